@@ -32,7 +32,7 @@ fn raise_if(inexact: bool, x: f64) -> f64 {
 /// infinite, and in the one case in which an intermediate result overflows though the sum does not (an argument equal to
 /// the largest f64; Boldo, Graillat & Muller 2017); callers step outwards on NaN.
 #[inline]
-fn two_sum(a: f64, b: f64) -> (f64, f64) {
+pub(crate) fn two_sum(a: f64, b: f64) -> (f64, f64) {
     let sum = a + b;
     let b_seen = sum - a;
     let a_seen = sum - b_seen;
