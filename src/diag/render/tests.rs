@@ -116,7 +116,7 @@ proptest! {
         sources.add("m.yaml", text);
         let at = Location { source: SourceId(id), span: Span { start, end } };
         let diagnostic = Diagnostic::error(at, "m").expected("e").related(at, "r").help("h");
-        prop_assert!(render(&diagnostic, &sources, true).contains("m"));
+        prop_assert!(render(&diagnostic, &sources, true).contains('m'));
         prop_assert!(position(&sources, at).1 >= 1);
     }
 }
