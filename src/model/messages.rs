@@ -96,7 +96,6 @@ messages! {
     SymbolNeeded: "the species \"{0}\" needs a symbol, because its name cannot stand in a formula", "\"symbol\"", "write a symbol of your choice, for example symbol: {1}";
     NameTaken: "the name \"{0}\" is used twice", "a name of its own", "rename one of the two; species' symbols, parameters and shorthand share one set of names";
     FunctionName: "\"{0}\" is the name of a function", "another name", "rename it, for example {0}_1";
-    TimeName: "\"{0}\" is kept for time, which models do not depend on", "another name", "rename it, for example {0}_1";
     UnknownName: "nothing is called \"{0}\"", "the name of a species, parameter or shorthand", "declare \"{0}\" under \"parameters\" or \"shorthand\"";
     UnknownNameNear: "nothing is called \"{0}\"", "\"{1}\"", "write \"{1}\", or declare \"{0}\"";
     NameCase: "nothing is called \"{0}\"; \"{1}\" differs by case", "\"{1}\"", "write \"{1}\": capital and small letters are different names";
@@ -154,6 +153,7 @@ messages! {
     Unreadable: "the file \"{0}\" cannot be read: {1}", "", "paths are relative to the model file";
     TableEmpty: "the table has no rows below its heading", "a heading, then one row for each {0}", "";
     Ragged: "the row has {0} cells, but the heading has {1}", "{1} cells", "{2}";
+    TableSemicolons: "the table's cells are parted by {0}, not by commas", "commas between cells", "save the table as CSV with commas, and with decimal points";
     QuoteInTable: "the quotation that opens here is not closed properly", "a closing quotation mark, then a comma or the end of the line", "";
     CellEmpty: "the cell is empty", "{0}", "write 0 where there is no effect";
     CellNotFinite: "the cell is not a finite number: \"{0}\"", "a finite number", "delete the row, or give a number";

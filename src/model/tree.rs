@@ -46,6 +46,13 @@ pub(super) struct Scalar {
     pub(super) style: Style,
 }
 
+impl Scalar {
+    /// Whether no quotation marks and no block header stand around it.
+    pub(super) fn is_plain(&self) -> bool {
+        self.style == Style::Plain
+    }
+}
+
 /// A key and its value.
 #[derive(Clone, Debug)]
 pub(super) struct Entry {
