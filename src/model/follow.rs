@@ -96,7 +96,7 @@ impl Walk {
         let code = body[at + 1..].chars().next()?;
         let after = at + 1 + code.len_utf8();
         if is_break(code) {
-            let rest = body[at + 1..].trim_start_matches("\r").strip_prefix('\n')?;
+            let rest = body[at + 1..].trim_start_matches('\r').strip_prefix('\n')?;
             let from = body.len() - rest.len();
             let run = rest.find(|c| !is_blank(c) && !is_break(c)).unwrap_or(rest.len());
             for (byte, _) in rest[..run].match_indices('\n') {
@@ -149,7 +149,9 @@ impl Walk {
         match breaks {
             [only] if fold && !self.value.trim_start_matches('\n').is_empty() => self.push(' ', *only),
             [_, others @ ..] if fold && !self.value.trim_start_matches('\n').is_empty() => {
-                others.iter().for_each(|&byte| self.push('\n', byte));
+                for &byte in others {
+                    self.push('\n', byte);
+                }
             }
             all => all.iter().for_each(|&byte| self.push('\n', byte)),
         }

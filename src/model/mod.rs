@@ -6,7 +6,9 @@
 
 mod events;
 mod follow;
+pub mod load;
 mod messages;
+mod overlay;
 mod slips;
 mod tree;
 mod yaml;

@@ -143,9 +143,8 @@ impl Builder<'_> {
             return self.fail(Message::Tag, span, &[&tag]);
         }
         match what {
-            What::Stream | What::DocumentEnd => Ok(()),
             What::DocumentStart if self.root.is_some() => self.fail(Message::SecondDocument, span, &[]),
-            What::DocumentStart => Ok(()),
+            What::Stream | What::DocumentStart | What::DocumentEnd => Ok(()),
             What::Alias(name) => self.alias(&name, span),
             What::Scalar { value, style } => self.scalar(Scalar { value, style }, anchor, span),
             What::SequenceStart { flow } => self.begin(anchor, span, flow, false),
@@ -201,11 +200,10 @@ impl Builder<'_> {
 
     fn end(&mut self, span: Span) -> Step {
         let Some(open) = self.open.pop() else { return Ok(()) };
-        let (anchor, size) = (open.anchor.clone(), open.size);
         let at = self.location(Span::new(open.start, span.end.max(open.start)));
-        let kind = if open.mapping { self.mapping(open)? } else { Kind::Sequence(open.children) };
-        let node = Rc::new(Node { kind, at, size });
-        if let Some(anchor) = anchor {
+        let kind = if open.mapping { self.mapping(&open)? } else { Kind::Sequence(open.children) };
+        let node = Rc::new(Node { kind, at, size: open.size });
+        if let Some(anchor) = open.anchor {
             self.anchors.insert(anchor, Some(Rc::clone(&node)));
         }
         self.place(node, span)
@@ -229,7 +227,7 @@ impl Builder<'_> {
         Ok(())
     }
 
-    fn mapping(&mut self, open: Open) -> Result<Kind, Box<Diagnostic>> {
+    fn mapping(&mut self, open: &Open) -> Result<Kind, Box<Diagnostic>> {
         let mut entries: Vec<Entry> = Vec::with_capacity(open.children.len() / 2);
         let mut seen: HashMap<String, Location> = HashMap::new();
         for pair in open.children.chunks_exact(2) {
