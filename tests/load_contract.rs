@@ -1,5 +1,7 @@
 //! The contract's own example, read as it stands, and the forms of every key that it does not use.
 
+#![expect(clippy::panic, reason = "a helper of tests")]
+
 use std::collections::BTreeMap;
 
 use restpoint::diag::render::render;

@@ -31,14 +31,13 @@ fn every_file_says_what_it_should() {
     let folder = Path::new(env!("CARGO_MANIFEST_DIR")).join("tests/files/errors");
     let mut names: Vec<String> = fs::read_dir(&folder)
         .expect("the folder")
-        .filter_map(|entry| entry.ok()?.file_name().into_string().ok())
-        .filter(|name| name.ends_with(".yaml"))
+        .filter_map(|entry| entry.ok()?.file_name().into_string().ok()?.strip_suffix(".yaml").map(str::to_owned))
         .collect();
     names.sort();
     let mut wrong = Vec::new();
     for name in &names {
-        let said = said(&folder, name);
-        let expected = fs::read_to_string(folder.join(name.replace(".yaml", ".txt"))).unwrap_or_default();
+        let said = said(&folder, &format!("{name}.yaml"));
+        let expected = fs::read_to_string(folder.join(format!("{name}.txt"))).unwrap_or_default();
         if said != expected || said.is_empty() {
             wrong.push(format!("{name}: expected\n{expected}\nbut it says\n{said}"));
         }

@@ -2,23 +2,38 @@
 
 use strsim::damerau_levenshtein;
 
+/// Letters of the longest word that is compared letter by letter; the cost grows with the square.
+const LONGEST: usize = 64;
+
+/// Candidates that are looked at; files with more names than this are not written by hand.
+const MOST: usize = 2_000;
+
 /// The candidate nearest to `word`: equal but for case, or within a third of its length in edits (Damerau 1964);
-/// the first of those equally near.
+/// the first of those equally near. Words of more than 64 letters resemble only those equal but for case; only the first
+/// 2,000 candidates are looked at.
 pub fn nearest<'c>(word: &str, candidates: impl IntoIterator<Item = &'c str>) -> Option<&'c str> {
     let folded = word.to_lowercase();
-    let allowed = (word.chars().count() / 3).max(1);
+    let length = word.chars().count();
+    let allowed = (length / 3).max(1);
     candidates
         .into_iter()
+        .take(MOST)
         .filter(|candidate| *candidate != word)
-        .map(|candidate| (edits(&folded, word, candidate), candidate))
-        .filter(|&(distance, candidate)| distance <= allowed && distance < candidate.chars().count())
+        .filter_map(|candidate| Some((edits(&folded, word, length, candidate, allowed)?, candidate)))
         .min_by_key(|&(distance, _)| distance)
         .map(|(_, candidate)| candidate)
 }
 
-/// Edits between two words; none where only case differs.
-fn edits(folded: &str, word: &str, candidate: &str) -> usize {
-    if candidate.to_lowercase() == folded { 0 } else { damerau_levenshtein(word, candidate) }
+/// Edits between two words, up to `allowed` and fewer than the candidate has letters; none where only case differs.
+fn edits(folded: &str, word: &str, length: usize, candidate: &str, allowed: usize) -> Option<usize> {
+    if candidate.chars().flat_map(char::to_lowercase).eq(folded.chars()) {
+        return Some(0);
+    }
+    let other = candidate.chars().count();
+    if length.max(other) > LONGEST || length.abs_diff(other) > allowed {
+        return None;
+    }
+    Some(damerau_levenshtein(word, candidate)).filter(|&distance| distance <= allowed && distance < other)
 }
 
 #[cfg(test)]
@@ -37,5 +52,13 @@ mod tests {
         check("colour", None);
         check("x", None);
         check("", None);
+    }
+
+    #[test]
+    fn long_words_cost_nothing() {
+        let (word, other) = ("a".repeat(500_000), format!("{}b", "a".repeat(499_999)));
+        assert_eq!(nearest(&word, [other.as_str()]), None);
+        let upper = word.to_uppercase();
+        assert_eq!(nearest(&word, [upper.as_str()]), Some(upper.as_str()));
     }
 }

@@ -72,6 +72,8 @@ struct Excerpt {
     name: String,
     number: usize,
     column: usize,
+    /// The byte of the line that the excerpt is cut around.
+    anchor: usize,
     line: Span,
     text: String,
     marks: Vec<Mark>,
@@ -111,7 +113,7 @@ fn excerpts(diagnostic: &Diagnostic, sources: &Sources) -> Vec<Excerpt> {
             continue;
         };
         // A place that the clipped line no longer shows is left to the text of its label.
-        let cut = Cut::around(&source.text[line.start..line.end], known.column);
+        let cut = Cut::around(&source.text[line.start..line.end], known.anchor);
         if let Some(span) = cut.shown(shifted(span, line.start)) {
             known.marks.push(Mark { kind, span, label });
         }
@@ -122,12 +124,14 @@ fn excerpts(diagnostic: &Diagnostic, sources: &Sources) -> Vec<Excerpt> {
 fn excerpt(source: &Source, line: Span, span: Span, kind: AnnotationKind, label: String) -> Excerpt {
     let text = &source.text[line.start..line.end];
     let column = text[..span.start - line.start].chars().count() + 1;
-    let cut = Cut::around(text, column);
+    let anchor = span.start - line.start;
+    let cut = Cut::around(text, anchor);
     let shown = cut.shown(shifted(span, line.start)).unwrap_or_default();
     Excerpt {
         name: harmless(&source.name),
         number: source.text[..line.start].matches('\n').count() + 1,
         column,
+        anchor,
         line,
         text: cut.text,
         marks: vec![Mark { kind, span: shown, label }],
@@ -146,10 +150,11 @@ struct Cut {
 }
 
 impl Cut {
-    fn around(line: &str, column: usize) -> Self {
-        let skipped = column.saturating_sub(MARGIN);
-        let mut cut = Self { text: if skipped > 0 { "…".to_owned() } else { String::new() }, bytes: Vec::new() };
-        let mut rest = line.char_indices().skip(skipped);
+    /// `byte` is the place in the line that is to be seen; it begins a character.
+    fn around(line: &str, byte: usize) -> Self {
+        let start = line[..byte].char_indices().rev().nth(MARGIN).map_or(0, |(byte, _)| byte);
+        let mut cut = Self { text: if start > 0 { "…".to_owned() } else { String::new() }, bytes: Vec::new() };
+        let mut rest = line[start..].char_indices().map(|(byte, c)| (start + byte, c));
         for (byte, c) in rest.by_ref().take(2 * MARGIN) {
             cut.bytes.push((byte, cut.text.len()));
             cut.text.push(if c != '\t' && is_hostile(c) { char::REPLACEMENT_CHARACTER } else { c });

@@ -25,7 +25,7 @@ macro_rules! messages {
             pub(super) const ALL: &'static [Self] = &[$(Self::$name),*];
 
             /// What is wrong, what was expected, what to do.
-            const fn row(self) -> [&'static str; 3] {
+            pub(super) const fn row(self) -> [&'static str; 3] {
                 match self { $(Self::$name => [$what, $expected, $help]),* }
             }
         }
@@ -67,7 +67,7 @@ messages! {
     YamlAlias: "this cannot be read as YAML: no name follows \"{0}\"", "", "where a formula begins with \"{0}\", something is missing before it";
     YamlOther: "this cannot be read as YAML: {0}", "", "look at this line and the one before it; quote what is meant as text";
     // Keys and plain values.
-    UnknownKey: "{0} has no key \"{1}\"", "one of {2}", "delete the line or choose one of the keys that exist";
+    UnknownKey: "{0} has no key \"{1}\"", "{2}", "delete the line or choose one of the keys that exist";
     UnknownKeyNear: "{0} has no key \"{1}\"", "\"{2}\"", "\"{2}\" is {3}";
     MissingKey: "{0} lacks the key \"{1}\"", "\"{1}\", {2}", "for example {3}";
     Missing: "{0} has no value", "{1}", "write the value after the colon, or delete the key";
@@ -86,7 +86,7 @@ messages! {
     Negative: "{0} must not be negative, but is {1}", "0 or more", "";
     NotAFlag: "{0} must be true or false, not \"{1}\"", "true or false", "";
     NotAWord: "{0} cannot be \"{1}\"", "{2}", "choose one of these, or leave the key out";
-    NotAPair: "{0} must be two values", "{1}", "write two values in brackets, with decimal points: [0.5, 1.5]";
+    NotAPair: "{0} must be two values", "{1}", "write {2}";
     SeveralLines: "{0} must be one line", "one line of text", "move the rest into \"note\"";
     Blank: "{0} is blank", "{1}", "write it, or delete the key";
     // Names.
@@ -116,8 +116,8 @@ messages! {
     UpperBelowLower: "\"upper\" ({0}) must be above \"lower\" ({1})", "more than {1}", "these two are the sides of the search box";
     RangeReversed: "the range from {0} to {1} is empty", "two numbers, low then high", "write the smaller number first; leave the range out for a value that is certain";
     LimitsReversed: "\"min\" ({0}) is above \"max\" ({1})", "a number up to {1}", "";
-    ValueOutsideLimits: "the value {0} lies outside its own limits, {1} to {2}", "", "change the value, \"min\" or \"max\"";
-    RangeOutsideLimits: "the range {0} to {1} has no part between \"min\" and \"max\", {2} to {3}", "", "change the range, \"min\" or \"max\"";
+    ValueOutsideLimits: "the value {0} lies outside its own limits: {1}", "", "change the value, \"min\" or \"max\"";
+    RangeOutsideLimits: "the range {0} to {1} has no part within its own limits: {2}", "", "change the range, \"min\" or \"max\"";
     DrawNotOne: "a draw names exactly one distribution", "one of {0}", "for example draw: {lognormal: {cv: 0.2}}";
     DrawWord: "a draw is a map with the distribution as its key", "{{0}: …}", "for example draw: {lognormal: {cv: 0.2}} or draw: {uniform: {}}";
     DrawNeedsRange: "a {0} draw needs a range", "\"range\" beside it", "for example range: [0.5, 1.5]";
@@ -166,7 +166,7 @@ messages! {
     GrowthMissing: "the growth table has no row for \"{0}\", which the matrix has", "one row for each species of the matrix", "add the row";
     MatrixMissing: "the matrix has no row for \"{0}\", which the growth table has", "one row for each species of the growth table", "add the row and its column";
     GrowthColumns: "the growth table has {0} columns", "two: symbol and growth", "{1}";
-    DrawOutside: "the value {0} of \"{1}\" lies outside its limits, {2} to {3}", "", "delete the row, or change \"min\" or \"max\" in the model";
+    DrawOutside: "the value {0} of \"{1}\" lies outside the limits of the model: {2}", "", "delete the row, or change \"min\" or \"max\" in the model";
     MoreErrors: "there are {0} more errors", "", "mend the first ones and check again";
 }
 

@@ -5,6 +5,7 @@
 //! never a second model.
 
 mod events;
+mod findings;
 mod follow;
 pub mod load;
 mod messages;

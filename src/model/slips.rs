@@ -43,14 +43,16 @@ pub(super) fn explain(text: &str, source: SourceId, fault: &Fault) -> Diagnostic
     };
     let here = place(byte);
     let word = text.get(here.span.start..here.span.end).unwrap_or_default();
-    if let Some(formula) = formula_with_comma(line_at(text, fault.at)) {
-        return Message::YamlSplitFormula.at(here, &[&formula]);
+    let line = line_at(text, fault.at);
+    if let Some(formula) = formula_with_comma(&text[line.start..line.end]) {
+        let span = Span::new(line.start + formula.start, line.start + formula.end);
+        return Message::YamlSplitFormula.at(Location { source, span }, &[&&text[span.start..span.end]]);
     }
     match row {
         None => Message::YamlOther.at(here, &[&fault.problem]),
         // A tab that indents is met as a character that begins nothing.
         Some((_, Message::YamlStart, _)) if word == "\t" => Message::YamlTab.at(here, &[]),
-        Some((_, Message::YamlColon, _)) => Message::YamlColon.at(here, &[&value_of(line_at(text, fault.at))]),
+        Some((_, Message::YamlColon, _)) => Message::YamlColon.at(here, &[&value_of(&text[line.start..line.end])]),
         Some((_, message @ Message::YamlIndent, _)) => {
             message.at(here, &[]).related(place(fault.began), "the map begins here")
         }
@@ -79,14 +81,17 @@ pub(super) fn split(text: &str, previous: Option<&Entry>, key: &Node, word: &str
     let Some((span, before)) = before else {
         return Message::KeyAlone.at(key.at, &[&word]);
     };
+    let place = |span| Location { source: key.at.source, span };
     let whole = Span::new(span.start, key.at.span.end);
     let joined = text.get(whole.start..whole.end).unwrap_or_default();
-    let at = Location { source: key.at.source, span: whole };
-    if is_digits(before.trim_start_matches(['+', '-'])) && word.starts_with(|c: char| c.is_ascii_digit()) {
-        return Message::SplitNumber.at(at, &[&joined, &format!("{before}.{word}")]);
+    let digits = is_digits(before.trim_start_matches(['+', '-'])) && word.starts_with(|c: char| c.is_ascii_digit());
+    if digits && !joined.contains(char::is_whitespace) {
+        return Message::SplitNumber.at(place(whole), &[&joined, &format!("{before}.{word}")]);
     }
     if before.matches('(').count() > before.matches(')').count() {
-        return Message::SplitFormula.at(at, &[&balanced(&text[whole.start..])]);
+        let formula = balanced(text.get(span.start..).unwrap_or_default());
+        let whole = Span::new(span.start, span.start + formula.len());
+        return Message::SplitFormula.at(place(whole), &[&formula]);
     }
     Message::KeyAlone.at(key.at, &[&word])
 }
@@ -111,13 +116,14 @@ fn balanced(text: &str) -> &str {
 }
 
 /// On a line with braces, the first unquoted value that has a comma inside parentheses.
-fn formula_with_comma(line: &str) -> Option<&str> {
+fn formula_with_comma(line: &str) -> Option<Span> {
     let open = line.find('{')?;
     for (colon, _) in line[open..].match_indices(": ") {
         let value = line[open + colon + 2..].trim_start();
         let formula = balanced(value);
         if !value.starts_with(['"', '\'', '{', '[']) && formula.contains(',') {
-            return Some(formula);
+            let start = line.len() - value.len();
+            return Some(Span::new(start, start + formula.len()));
         }
     }
     None
@@ -128,10 +134,12 @@ fn value_of(line: &str) -> &str {
     line.split_once(": ").map_or(line, |(_, value)| value).trim()
 }
 
-fn line_at(text: &str, byte: usize) -> &str {
+/// The line that holds a byte, without its break.
+fn line_at(text: &str, byte: usize) -> Span {
     let byte = character(text, byte).start;
     let start = text[..byte].rfind('\n').map_or(0, |newline| newline + 1);
-    text[start..].lines().next().unwrap_or_default()
+    let line = text[start..].lines().next().unwrap_or_default();
+    Span::new(start, start + line.len())
 }
 
 /// The character that holds a byte; the empty end where the text is over.

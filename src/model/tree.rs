@@ -8,6 +8,7 @@ use std::collections::HashMap;
 use std::rc::Rc;
 
 use super::events::{Event, Events, Style, What};
+use super::findings::Findings;
 use super::messages::Message;
 use super::slips;
 use crate::diag::cleanse::is_hostile;
@@ -82,7 +83,7 @@ impl Size {
 pub(super) struct Tree {
     /// The document; `None` where the text holds none or was refused.
     pub(super) root: Option<Rc<Node>>,
-    pub(super) diagnostics: Vec<Diagnostic>,
+    pub(super) findings: Findings,
 }
 
 impl Tree {
@@ -90,14 +91,14 @@ impl Tree {
     /// reading; duplicate keys and entries split by a comma do not.
     pub(super) fn read(text: &str, source: SourceId) -> Self {
         let mut builder =
-            Builder { text, source, open: Vec::new(), anchors: HashMap::new(), root: None, found: Vec::new() };
+            Builder { text, source, open: Vec::new(), anchors: HashMap::new(), root: None, found: Findings::default() };
         let ended = builder.run();
         let Builder { root, mut found, .. } = builder;
         match ended {
-            Ok(()) => Self { root, diagnostics: found },
+            Ok(()) => Self { root, findings: found },
             Err(fatal) => {
-                found.push(*fatal);
-                Self { root: None, diagnostics: found }
+                found.report(*fatal);
+                Self { root: None, findings: found }
             }
         }
     }
@@ -121,7 +122,7 @@ struct Builder<'t> {
     /// `None` while the anchored node is open.
     anchors: HashMap<String, Option<Rc<Node>>>,
     root: Option<Rc<Node>>,
-    found: Vec<Diagnostic>,
+    found: Findings,
 }
 
 type Step = Result<(), Box<Diagnostic>>;
@@ -140,7 +141,8 @@ impl Builder<'_> {
     fn event(&mut self, event: Event) -> Step {
         let Event { what, anchor, tag, span } = event;
         if let Some(tag) = tag {
-            return self.fail(Message::Tag, span, &[&tag]);
+            let written = tag.strip_prefix("tag:yaml.org,2002:").map_or(tag.clone(), |short| format!("!!{short}"));
+            return self.fail(Message::Tag, span, &[&written]);
         }
         match what {
             What::DocumentStart if self.root.is_some() => self.fail(Message::SecondDocument, span, &[]),
@@ -174,7 +176,7 @@ impl Builder<'_> {
         let hidden = scalar.value.chars().find(|&c| c != '\n' && c != '\t' && is_hostile(c));
         let size = Size { nodes: 1, bytes: scalar.value.len(), depth: 0 };
         let kind = if let Some(c) = hidden {
-            self.found.push(Message::HiddenInText.at(at, &[&name_of(c)]));
+            self.found.say(Message::HiddenInText, at, &[&name_of(c)]);
             Kind::Broken
         } else {
             Kind::Scalar(scalar)
@@ -234,14 +236,18 @@ impl Builder<'_> {
             let [key, value] = [&pair[0], &pair[1]];
             let Some(text) = self.key(key)? else { continue };
             if open.flow && slips::stands_alone(self.text, key, value) {
-                self.found.push(slips::split(self.text, entries.last(), key, text));
+                // The third part of a formula with two commas: the first two were reported together.
+                if entries.last().is_some_and(|entry| matches!(entry.value.kind, Kind::Broken)) {
+                    continue;
+                }
+                self.found.report(slips::split(self.text, entries.last(), key, text));
                 if let Some(previous) = entries.last_mut() {
                     previous.value = Rc::new(Node { kind: Kind::Broken, at: previous.value.at, size: Size::default() });
                 }
                 continue;
             }
             if let Some(first) = seen.get(text) {
-                self.found.push(Message::DuplicateKey.at(key.at, &[&text]).related(*first, "first here"));
+                self.found.twice(key.at, text, *first);
                 continue;
             }
             seen.insert(text.to_owned(), key.at);
@@ -259,7 +265,7 @@ impl Builder<'_> {
             Kind::Scalar(scalar) if !scalar.value.is_empty() => Ok(Some(&scalar.value)),
             Kind::Broken => Ok(None),
             _ => {
-                self.found.push(Message::KeyNotText.at(key.at, &[]));
+                self.found.say(Message::KeyNotText, key.at, &[]);
                 Ok(None)
             }
         }

@@ -7,6 +7,7 @@
 use serde_yaml::Number;
 
 use super::events::Style;
+use super::findings::Findings;
 use super::messages::Message;
 use super::tree::{Scalar, Tree, name_of};
 use crate::diag::cleanse::is_hostile;
@@ -74,7 +75,9 @@ pub(super) fn read(name: &str, bytes: &[u8], sources: &mut Sources) -> (SourceId
 }
 
 fn refused(diagnostic: Diagnostic) -> Tree {
-    Tree { root: None, diagnostics: vec![diagnostic] }
+    let mut findings = Findings::default();
+    findings.report(diagnostic);
+    Tree { root: None, findings }
 }
 
 /// The text of a file; else the message, its place, and as much of the file as is worth showing.
@@ -232,7 +235,7 @@ mod tests {
             let mut sources = Sources::default();
             let (source, tree) = read("m.yaml", bytes.as_bytes(), &mut sources);
             let length = sources.get(source).map_or(0, |source| source.text.len());
-            for diagnostic in tree.diagnostics {
+            for diagnostic in tree.findings.into_sorted() {
                 prop_assert!(diagnostic.at.span.end <= length, "{:?}", diagnostic);
             }
         }

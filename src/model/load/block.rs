@@ -94,9 +94,6 @@ impl Raw<'_> {
         for one in species.iter_mut().filter(|one| one.upper.is_none() && self.names(&one.symbol)) {
             one.upper = self.upper;
         }
-        if species.len() > SPECIES_LIMIT {
-            desk.say(Message::TooManySpecies, self.at, &[&species.len(), &SPECIES_LIMIT]);
-        }
     }
 
     fn names(&self, symbol: &str) -> bool {

@@ -11,20 +11,16 @@ use super::keys::{Key, Table};
 use crate::diag::nearest::nearest;
 use crate::diag::{Diagnostic, Location, Sources};
 use crate::model::Placed;
+use crate::model::findings::Findings;
 use crate::model::messages::Message;
 use crate::model::tree::{Entry, Kind, Node};
 use crate::model::yaml::Typed;
-
-/// Errors that are kept; a file with more has one cause for most of them.
-const ERROR_LIMIT: usize = 100;
 
 /// The reading of one model file.
 pub(super) struct Desk<'f> {
     pub(super) files: &'f dyn Files,
     pub(super) sources: Sources,
-    found: Vec<Diagnostic>,
-    /// The first error beyond the limit, and how many there were.
-    more: Option<(Location, usize)>,
+    findings: Findings,
     /// Something was passed over that an error already reported may have caused.
     doubt: bool,
 }
@@ -46,13 +42,13 @@ impl<'n> Fields<'n> {
 }
 
 impl<'f> Desk<'f> {
-    pub(super) fn new(files: &'f dyn Files, sources: Sources) -> Self {
-        Self { files, sources, found: Vec::new(), more: None, doubt: false }
+    pub(super) fn new(files: &'f dyn Files, sources: Sources, findings: Findings) -> Self {
+        Self { files, sources, findings, doubt: false }
     }
 
     /// Whether nothing was wrong and nothing was passed over.
     pub(super) fn is_clean(&self) -> bool {
-        self.found.is_empty() && !self.doubt
+        self.findings.is_empty() && !self.doubt
     }
 
     /// Notes that a name was left unjudged, because part of the declarations could not be read.
@@ -61,28 +57,36 @@ impl<'f> Desk<'f> {
     }
 
     pub(super) fn say(&mut self, message: Message, at: Location, values: &[&dyn Display]) {
-        if self.found.len() < ERROR_LIMIT {
-            self.found.push(message.at(at, values));
-        } else {
-            self.more = Some(self.more.map_or((at, 1), |(first, count)| (first, count + 1)));
-        }
+        self.findings.say(message, at, values);
+    }
+
+    /// As [`say`](Self::say), with the place of the other of two things that cannot both be.
+    pub(super) fn say_both(
+        &mut self,
+        message: Message,
+        at: Location,
+        values: &[&dyn Display],
+        other: (Location, &str),
+    ) {
+        self.findings.report(message.at(at, values).related(other.0, other.1));
     }
 
     pub(super) fn report(&mut self, diagnostic: Diagnostic) {
-        if self.found.len() < ERROR_LIMIT {
-            self.found.push(diagnostic);
-        } else {
-            self.more = Some(self.more.map_or((diagnostic.at, 1), |(first, count)| (first, count + 1)));
-        }
+        self.findings.report(diagnostic);
+    }
+
+    /// The candidate that was probably meant; not asked for where no more advice is shown.
+    pub(super) fn nearest<'c>(&self, word: &str, candidates: impl IntoIterator<Item = &'c str>) -> Option<&'c str> {
+        if self.is_full() { None } else { nearest(word, candidates) }
+    }
+
+    pub(super) fn is_full(&self) -> bool {
+        self.findings.is_full()
     }
 
     /// The texts, and everything that was said, in the order of the file.
-    pub(super) fn finish(mut self) -> (Sources, Vec<Diagnostic>) {
-        self.found.sort_by_key(|diagnostic| diagnostic.at);
-        if let Some((at, count)) = self.more {
-            self.found.push(Message::MoreErrors.at(at, &[&count]));
-        }
-        (self.sources, self.found)
+    pub(super) fn finish(self) -> (Sources, Vec<Diagnostic>) {
+        (self.sources, self.findings.into_sorted())
     }
 
     /// A map with the keys of a table; an empty value is an empty map. `name` is what messages call it.
@@ -102,19 +106,20 @@ impl<'f> Desk<'f> {
     }
 
     fn unknown_key(&mut self, entry: &Entry, table: &Table) {
-        let near = nearest(&entry.key, table.keys.iter().map(|key| key.name));
+        let near = self.nearest(&entry.key, table.keys.iter().map(|key| key.name));
         if let Some(Key { name, what, .. }) = near.and_then(|near| table.keys.iter().find(|key| key.name == near)) {
             self.say(Message::UnknownKeyNear, entry.key_at, &[&table.name, &entry.key, name, what]);
             return;
         }
         let names: Vec<&str> = table.keys.iter().map(|key| key.name).collect();
-        let names = if names.is_empty() { "no keys at all".to_owned() } else { names.join(", ") };
+        let names =
+            if names.is_empty() { "an empty map: {}".to_owned() } else { format!("one of {}", names.join(", ")) };
         self.say(Message::UnknownKey, entry.key_at, &[&table.name, &entry.key, &names]);
     }
 
     fn mapping<'n>(&mut self, node: &'n Node, name: &str, keys: &[Key]) -> Option<&'n [Entry]> {
         let example = keys.iter().find(|key| key.required).or(keys.first()).map_or("{}", |key| key.example);
-        self.map(node, name, "a map", &format!("write keys and values, for example {{{example}}}"))
+        self.map(node, name, "keys and values", &format!("write for example {{{example}}}"))
     }
 
     /// A map whose keys are names of the user's own.
@@ -235,7 +240,8 @@ impl<'f> Desk<'f> {
         let what = "two numbers, low then high";
         let nodes = self.list(node, name, what)?;
         let [low, high] = nodes else {
-            self.say(Message::NotAPair, node.at, &[&name, &what]);
+            let advice = "two numbers in brackets, with decimal points: [0.5, 1.5]";
+            self.say(Message::NotAPair, node.at, &[&name, &what, &advice]);
             return None;
         };
         let (low, high) = (self.number(low, name), self.number(high, name));

@@ -4,7 +4,7 @@ use std::collections::HashMap;
 
 use super::desk::{Desk, Fields, is_null};
 use super::names::Names;
-use super::parameters::words;
+use super::parameters::limits_in_words;
 use super::table::{Cell, Form, Table, open};
 use crate::diag::Location;
 use crate::model::messages::Message;
@@ -53,7 +53,7 @@ fn columns(desk: &mut Desk<'_>, names: &Names, table: &Table) -> Vec<Option<Para
             desk.say(Message::HeadingIsNumber, at, &[&name, &"put the names of the parameters above the values"]);
         } else if let Some(id) = names.parameter(desk, &name, at) {
             if let Some(first) = seen.insert(id.0, at) {
-                desk.report(Message::ColumnTwice.at(at, &[&name]).related(first, "first here"));
+                desk.say_both(Message::ColumnTwice, at, &[&name], (first, "first here"));
             }
             found.push(Some(id));
             continue;
@@ -92,6 +92,6 @@ fn value(desk: &mut Desk<'_>, table: &Table, cell: Cell) -> Option<f64> {
 fn within(desk: &mut Desk<'_>, parameter: &Parameter, value: f64, at: Location) {
     let (min, max) = (parameter.min.unwrap_or(f64::NEG_INFINITY), parameter.max.unwrap_or(f64::INFINITY));
     if !(min..=max).contains(&value) {
-        desk.say(Message::DrawOutside, at, &[&value, &parameter.name, &words(min), &words(max)]);
+        desk.say(Message::DrawOutside, at, &[&value, &parameter.name, &limits_in_words(min, max)]);
     }
 }

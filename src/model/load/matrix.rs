@@ -64,7 +64,8 @@ pub(super) fn matrix(desk: &mut Desk<'_>, path: &str, at: Location) -> Option<Sy
     let columns: Vec<Placed<String>> = table.heading[1..].iter().map(|&cell| placed(desk, &table, cell)).collect();
     let unique = distinct(desk, &columns, Message::ColumnTwice);
     let table = rows(desk, table, columns)?;
-    (square(desk, &table) && unique).then_some(table)
+    // A row that was left out would be missed by the comparison, although it was reported.
+    (table.table.whole && square(desk, &table) && unique).then_some(table)
 }
 
 fn placed(desk: &Desk<'_>, table: &Table, cell: Cell) -> Placed<String> {
@@ -89,7 +90,7 @@ fn distinct(desk: &mut Desk<'_>, symbols: &[Placed<String>], message: Message) -
     let mut distinct = true;
     for symbol in symbols {
         if let Some(first) = seen.insert(&symbol.value, symbol.at) {
-            desk.report(message.at(symbol.at, &[&symbol.value]).related(first, "first here"));
+            desk.say_both(message, symbol.at, &[&symbol.value], (first, "first here"));
             distinct = false;
         }
     }

@@ -50,11 +50,9 @@ impl Files for NoFiles {
 pub fn load(name: &str, text: &[u8], files: &dyn Files) -> (Option<Model>, Sources, Vec<Diagnostic>) {
     let mut sources = Sources::default();
     let (source, tree) = yaml::read(name, text, &mut sources);
-    let mut desk = Desk::new(files, sources);
-    let readable = tree.diagnostics.is_empty();
-    tree.diagnostics.into_iter().for_each(|diagnostic| desk.report(diagnostic));
+    let mut desk = Desk::new(files, sources, tree.findings);
     let root = tree.root.filter(|root| !desk::is_null(root));
-    if root.is_none() && readable {
+    if root.is_none() && desk.is_clean() {
         desk.say(Message::EmptyFile, Location { source, span: Span::default() }, &[]);
     }
     let model = root.and_then(|root| whole::model(&mut desk, &root));
@@ -62,3 +60,6 @@ pub fn load(name: &str, text: &[u8], files: &dyn Files) -> (Option<Model>, Sourc
     let model = model.filter(|_| diagnostics.is_empty()).map(|model| Model { sources: sources.clone(), ..model });
     (model, sources, diagnostics)
 }
+
+#[cfg(test)]
+mod tests;

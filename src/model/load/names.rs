@@ -47,7 +47,7 @@ pub(super) struct Written {
 
 /// The name as formulas read it.
 pub(super) fn normal(name: &str) -> String {
-    name.nfc().collect()
+    if name.is_ascii() { name.to_owned() } else { name.nfc().collect() }
 }
 
 /// A name of letters, digits and underscores that resembles the text.
@@ -67,8 +67,7 @@ impl Names {
             desk.say(Message::FunctionName, at, &[&name]);
         }
         if let Some((_, first)) = self.declared.get(&name) {
-            let diagnostic = Message::NameTaken.at(at, &[&name]).related(*first, "first here");
-            desk.report(diagnostic);
+            desk.say_both(Message::NameTaken, at, &[&name], (*first, "first here"));
             return;
         }
         self.declared.insert(name, (stands_for, at));
@@ -116,7 +115,7 @@ impl Names {
             Some(other) => desk.say(Message::NotASpecies, at, &[&symbol, &Self::describe(other), &symbols]),
             None if self.incomplete => desk.unsure(),
             None => {
-                let near = nearest(symbol, self.symbols.iter().map(String::as_str));
+                let near = desk.nearest(symbol, self.symbols.iter().map(String::as_str));
                 match (self.long.get(symbol), near) {
                     (Some(meant), _) => desk.say(Message::LongName, at, &[&symbol, meant]),
                     (None, Some(near)) => desk.say(Message::UnknownSpeciesNear, at, &[&symbol, &near]),
@@ -133,7 +132,7 @@ impl Names {
             Some(Name::Parameter(id)) => return Some(id),
             Some(other) => desk.say(Message::NotAParameter, at, &[&name, &Self::describe(other)]),
             None if self.incomplete => desk.unsure(),
-            None => match nearest(name, self.parameters()) {
+            None => match desk.nearest(name, self.parameters()) {
                 Some(near) => desk.say(Message::UnknownParameterNear, at, &[&name, &near]),
                 None => desk.say(Message::UnknownParameter, at, &[&name]),
             },
@@ -188,11 +187,12 @@ impl Names {
             .collect();
         let mut seen: Vec<&str> = Vec::new();
         let mut unsure = false;
+        let hurry = desk.is_full();
         formula.expr.walk(&mut |part| match &part.kind {
             ExprKind::Name(name) if !seen.contains(&name.as_str()) => {
                 seen.push(name);
                 unsure |= self.incomplete && !self.declared.contains_key(name);
-                found.extend(self.misused(name, formula.locate(part.span), scope));
+                found.extend(self.misused(name, formula.locate(part.span), scope, hurry));
             }
             ExprKind::Call(Builtin::Ramp | Builtin::Clamp, arguments) => {
                 found.extend(bounds_reversed(&formula, part, arguments));
@@ -209,13 +209,15 @@ impl Names {
         sound.then_some(formula)
     }
 
-    fn misused(&self, name: &str, at: Location, scope: Scope) -> Option<Diagnostic> {
+    /// What is wrong with the use of a name. In a hurry, where it is to be counted only, the cause is not looked for.
+    fn misused(&self, name: &str, at: Location, scope: Scope, hurry: bool) -> Option<Diagnostic> {
         match (self.declared.get(name), scope) {
             (Some(_), Scope::Everything) | (Some((Name::Parameter(_), _)), _) => None,
             (Some((other, _)), Scope::Parameters(whose)) => {
                 Some(Message::ParametersOnly.at(at, &[&name, &Self::describe(*other), &whose]))
             }
             (None, _) if self.incomplete => None,
+            (None, _) if hurry => Some(Message::UnknownName.at(at, &[&name])),
             (None, _) => Some(self.unknown(name, at)),
         }
     }

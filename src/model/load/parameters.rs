@@ -87,21 +87,21 @@ fn limits(desk: &mut Desk<'_>, fields: &Fields<'_>, parameter: &Parameter, value
         return;
     }
     if let Some(value) = value.filter(|value| !(min..=max).contains(value)) {
-        desk.say(Message::ValueOutsideLimits, parameter.value_at, &[&value, &words(min), &words(max)]);
+        desk.say(Message::ValueOutsideLimits, parameter.value_at, &[&value, &limits_in_words(min, max)]);
     }
     if let Some(Placed { value: [low, high], at }) = parameter.range
         && (high < min || low > max)
     {
-        desk.say(Message::RangeOutsideLimits, at, &[&low, &high, &words(min), &words(max)]);
+        desk.say(Message::RangeOutsideLimits, at, &[&low, &high, &limits_in_words(min, max)]);
     }
 }
 
-/// A limit in words, where it may be missing.
-pub(super) fn words(limit: f64) -> String {
-    match limit {
-        f64::NEG_INFINITY => "no limit below".to_owned(),
-        f64::INFINITY => "no limit above".to_owned(),
-        limit => limit.to_string(),
+/// Two limits in words, where one of them may be infinite.
+pub(super) fn limits_in_words(min: f64, max: f64) -> String {
+    match (min.is_finite(), max.is_finite()) {
+        (true, true) => format!("{min} to {max}"),
+        (true, false) => format!("at least {min}"),
+        _ => format!("at most {max}"),
     }
 }
 
@@ -195,7 +195,7 @@ pub(super) fn correlations(
             other.between == correlation.between || other.between == [correlation.between[1], correlation.between[0]]
         };
         if let Some(first) = found.iter().find(same) {
-            desk.report(Message::PairTwice.at(correlation.at, &[&a, &b]).related(first.at, "first here"));
+            desk.say_both(Message::PairTwice, correlation.at, &[&a, &b], (first.at, "first here"));
         }
         for id in correlation.between {
             let column = draws.is_some_and(|draws| draws.columns.contains(&id));
@@ -228,7 +228,7 @@ fn rank(desk: &mut Desk<'_>, node: &Node) -> Option<f64> {
 fn between(desk: &mut Desk<'_>, node: &Node, names: &Names) -> Option<([ParameterId; 2], Location)> {
     let what = "the names of two parameters";
     let [a, b] = desk.list(node, "\"between\"", what)? else {
-        desk.say(Message::NotAPair, node.at, &[&"\"between\"", &what]);
+        desk.say(Message::NotAPair, node.at, &[&"\"between\"", &what, &"two names in brackets: [r, K]"]);
         return None;
     };
     let mut one = |node: &Node| {

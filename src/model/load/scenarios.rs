@@ -5,7 +5,6 @@ use super::keys::{SCENARIO, SKETCH, SURVEY};
 use super::names::{Names, Scope};
 use super::parts::{harvests, processes};
 use crate::diag::Location;
-use crate::diag::nearest::nearest;
 use crate::model::messages::Message;
 use crate::model::tree::{Entry, Kind};
 use crate::model::{Formula, Harvest, ParameterId, Placed, Process, Scenario, SpeciesId, Survey, TimeKind};
@@ -84,10 +83,9 @@ fn without(desk: &mut Desk<'_>, fields: &Fields<'_>, base: &Base<'_>) -> Vec<Pla
     for node in desk.list(node, "\"without\"", what).unwrap_or_default() {
         let Some(name) = desk.text(node, "\"without\"", "the name of a process or harvest") else { continue };
         if let Some(first) = found.iter().find(|other| other.value == name.value) {
-            let diagnostic = Message::WithoutTwice.at(name.at, &[&name.value]).related(first.at, "first here");
-            desk.report(diagnostic);
+            desk.say_both(Message::WithoutTwice, name.at, &[&name.value], (first.at, "first here"));
         } else if !known.contains(&name.value.as_str()) {
-            match nearest(&name.value, known.iter().copied()) {
+            match desk.nearest(&name.value, known.iter().copied()) {
                 Some(near) => desk.say(Message::UnknownPartNear, name.at, &[&name.value, &near]),
                 None => desk.say(Message::UnknownPart, name.at, &[&name.value, &known.join(", ")]),
             }
@@ -118,12 +116,12 @@ fn shared_names(desk: &mut Desk<'_>, base: &Base<'_>, scenario: &Scenario) {
     for harvest in &scenario.harvest {
         let mut processes = base.processes.iter().chain(&scenario.processes);
         if let Some(process) = processes.find(|process| process.name == harvest.name) {
-            desk.report(Message::SharedName.at(harvest.at, &[&harvest.name]).related(process.at, "the process"));
+            desk.say_both(Message::SharedName, harvest.at, &[&harvest.name], (process.at, "the process"));
         }
     }
     for process in &scenario.processes {
         if let Some(harvest) = base.harvest.iter().find(|harvest| harvest.name == process.name) {
-            desk.report(Message::SharedName.at(process.at, &[&process.name]).related(harvest.at, "the harvest"));
+            desk.say_both(Message::SharedName, process.at, &[&process.name], (harvest.at, "the harvest"));
         }
     }
 }

@@ -24,6 +24,8 @@ pub(super) struct Table {
     pub(super) path: String,
     pub(super) heading: Vec<Cell>,
     pub(super) rows: Vec<Vec<Cell>>,
+    /// Whether no row was left out.
+    pub(super) whole: bool,
 }
 
 /// How a table is read.
@@ -104,7 +106,7 @@ fn checked(desk: &mut Desk<'_>, rows: Vec<Vec<Cell>>, source: SourceId, path: &s
         desk.say(Message::TableEmpty, start, &[&form.row]);
         return None;
     };
-    let mut table = Table { source, path: path.to_owned(), heading, rows: Vec::new() };
+    let mut table = Table { source, path: path.to_owned(), heading, rows: Vec::new(), whole: true };
     if let [only] = table.heading.as_slice() {
         let foreign = [(";", "semicolons"), ("\t", "tabs")];
         let (text, _) = table.text(desk, *only);
@@ -118,11 +120,12 @@ fn checked(desk: &mut Desk<'_>, rows: Vec<Vec<Cell>>, source: SourceId, path: &s
         if row.len() == width {
             table.rows.push(row);
         } else if let (Some(first), Some(last)) = (row.first(), row.last()) {
+            table.whole = false;
             let at = Location { source, span: first.span.to(last.span) };
             desk.say(Message::Ragged, at, &[&row.len(), &width, &form.advice]);
         }
     }
-    if table.rows.is_empty() {
+    if table.rows.is_empty() && table.whole {
         desk.say(Message::TableEmpty, start, &[&form.row]);
         return None;
     }

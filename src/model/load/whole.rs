@@ -125,8 +125,7 @@ fn next_for_all(desk: &mut Desk<'_>, fields: &Fields<'_>, time: &TimeKind, next:
 fn shared_names(desk: &mut Desk<'_>, processes: &[Process], harvest: &[Harvest]) {
     for harvest in harvest {
         if let Some(process) = processes.iter().find(|process| process.name == harvest.name) {
-            let diagnostic = Message::SharedName.at(harvest.at, &[&harvest.name]).related(process.at, "the process");
-            desk.report(diagnostic);
+            desk.say_both(Message::SharedName, harvest.at, &[&harvest.name], (process.at, "the process"));
         }
     }
 }
