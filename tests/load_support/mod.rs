@@ -44,7 +44,7 @@ pub(crate) fn faulty_files() -> Vec<Hostile> {
     let unknown: Vec<String> = (0..30_000).map(|index| format!("{index}: {index}\n")).collect();
     let head = "title: T\ntime: yr\nspecies: {N: {upper: 9}}\n";
     let long = "n".repeat(500_000);
-    let lists = |item: &dyn Fn(usize) -> String| (0..20_000).map(item).collect::<Vec<_>>().join(", ");
+    let lists = |item: &dyn Fn(usize) -> String| (0..10_000).map(item).collect::<Vec<_>>().join(", ");
     let names = lists(&|index| format!("name{index}: 1"));
     let uses = lists(&|index| format!("nome{index}: 1"));
     let scenario = format!("{BASE}parameters: {{{names}}}\nscenarios: {{a: {{values: {{{uses}}}}}}}\n");
