@@ -4,6 +4,15 @@
 //! trees with their places; `system` assembles them into rows of the graph. A [`Scenario`] is a small overlay on a model,
 //! never a second model.
 
+mod events;
+mod follow;
+pub mod load;
+mod messages;
+mod overlay;
+mod slips;
+mod tree;
+mod yaml;
+
 use std::collections::BTreeMap;
 
 use crate::diag::{Location, Sources, Span};
