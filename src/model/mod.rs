@@ -10,6 +10,7 @@ pub mod load;
 mod messages;
 mod overlay;
 mod slips;
+pub mod system;
 mod tree;
 mod yaml;
 

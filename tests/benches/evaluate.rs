@@ -1,7 +1,9 @@
 //! Evaluation of a Rosenzweig–MacArthur model with harvest (Rosenzweig & MacArthur 1963) and of a ten-species web:
 //! tapes against the same right-hand side written by hand, in the same run.
 
-#![allow(clippy::print_stdout, reason = "a benchmark prints its table")]
+#![allow(clippy::print_stdout, clippy::panic, reason = "a benchmark prints its table, and fails by panicking")]
+#![allow(clippy::format_push_string, reason = "building ten formulas is not what is timed")]
+#![allow(clippy::inline_always, reason = "the limit to compare with is inlined code")]
 
 mod common;
 
@@ -27,12 +29,12 @@ fn rows(states: &[String], parameters: &[String], formulas: &[String]) -> (Graph
     let rows = formulas.iter().map(|text| {
         let (expr, slips) = parse(text);
         assert!(slips.is_empty(), "{text}: {slips:?}");
-        graph.read(&expr, &mut |graph, name| match states.iter().position(|state| state == name) {
-            Some(i) => graph.state(i),
-            None => {
-                let i = parameters.iter().position(|parameter| parameter == name);
-                graph.parameter(i.unwrap_or_else(|| panic!("unknown {name}")))
+        graph.read(&expr, &mut |graph, name| {
+            if let Some(i) = states.iter().position(|state| state == name) {
+                return graph.state(i);
             }
+            let i = parameters.iter().position(|parameter| parameter == name);
+            graph.parameter(i.unwrap_or_else(|| panic!("unknown {name}")))
         })
     });
     let rows = rows.collect();

@@ -95,20 +95,18 @@ pub(super) fn fuse(
     numbered.filter_map(|(position, kernel)| Some(((first + position) as Register, kernel?))).collect()
 }
 
+/// A first operation, where it stands, and what it reads.
+type Inner = (usize, (First, [Register; 2]));
+
 /// An operation joined with the one that makes one of its operands, and where that one stood.
-fn join(
-    operation: Operation<Register>,
-    inner: &dyn Fn(Register) -> Option<(usize, (First, [Register; 2]))>,
-) -> Option<(usize, Kernel)> {
+fn join(operation: Operation<Register>, inner: &dyn Fn(Register) -> Option<Inner>) -> Option<(usize, Kernel)> {
     let (left, right, on_left, on_right) = match operation {
         Operation::Add(a, b) => (a, b, Second::Add, Second::Add),
         Operation::Sub(a, b) => (a, b, Second::Minus, Second::From),
         Operation::Mul(a, b) => (a, b, Second::Mul, Second::Mul),
         _ => return None,
     };
-    let joined = |(position, (first, [a, b])): (usize, (First, [Register; 2])), second, c| {
-        (position, Kernel::Two(first, second, [a, b, c]))
-    };
+    let joined = |(position, (first, [a, b])): Inner, second, c| (position, Kernel::Two(first, second, [a, b, c]));
     match (inner(left), inner(right)) {
         (Some(found), _) => Some(joined(found, on_left, right)),
         (None, Some(found)) => Some(joined(found, on_right, left)),
