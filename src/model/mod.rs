@@ -4,6 +4,8 @@
 //! trees with their places; `system` assembles them into rows of the graph. A [`Scenario`] is a small overlay on a model,
 //! never a second model.
 
+pub mod units;
+
 use std::collections::BTreeMap;
 
 use crate::diag::{Location, Sources, Span};
