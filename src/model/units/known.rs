@@ -115,6 +115,15 @@ pub(super) fn is_length(name: &str) -> bool {
     matches!(meaning(name).measures, Some((Base::Length, power)) if power == 1.0)
 }
 
+/// Where `name` stands in a product: amounts first, then lengths, then times.
+pub(super) fn rank(name: &str) -> u8 {
+    match meaning(name).measures {
+        Some((Base::Length, _)) => 1,
+        Some((Base::Time, _)) => 2,
+        _ => 0,
+    }
+}
+
 fn find(name: &str) -> Option<&'static Known> {
     UNITS.iter().find(|known| known.spellings.contains(&name))
 }

@@ -91,16 +91,16 @@ pub fn compare(a: &Unit, b: &Unit) -> Agreement {
 }
 
 /// As an ecologist would write it, in ASCII as far as the names are: `kt/yr`, `1/(kt*yr)`, `1000 ind/km2`; `1` for plain
-/// numbers.
+/// numbers. Amounts come first, then lengths, then times.
 impl fmt::Display for Unit {
     fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
-        let above: Vec<String> = self.parts.iter().filter(|(_, power)| *power > 0.0).map(power_of).collect();
-        let below: Vec<String> = self
-            .parts
-            .iter()
-            .filter(|(_, power)| *power < 0.0)
-            .map(|(name, power)| power_of(&(name.clone(), -power)))
-            .collect();
+        let mut parts = self.parts.clone();
+        parts.sort_by_key(|(name, _)| known::rank(name));
+        let above: Vec<String> = parts.iter().filter(|(_, power)| *power > 0.0).map(power_of).collect();
+        for (_, power) in &mut parts {
+            *power = -*power;
+        }
+        let below: Vec<String> = parts.iter().filter(|(_, power)| *power > 0.0).map(power_of).collect();
         let factor = (self.log10.abs() >= SAME).then(|| plain(10f64.powf(self.log10)));
         match (factor, above.as_slice()) {
             (Some(factor), []) => f.write_str(&factor)?,
