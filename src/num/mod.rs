@@ -1,1 +1,10 @@
 //! Pure numerics, one method a file: interval arithmetic and what rests on it. Knows nothing of models.
+//!
+//! [`interval`] is the number type that proofs are made of; [`round`] gives the directed bounds under it, [`elementary`]
+//! the scalar functions that every number type shares. To add a
+//! function, give its scalar form in [`elementary`], its enclosure in [`interval`], and rows of references to
+//! `tests/data/interval_references.py`.
+
+pub mod elementary;
+pub mod interval;
+pub mod round;
