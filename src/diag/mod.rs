@@ -3,6 +3,8 @@
 //! Everything that is wrong with a file is a [`Diagnostic`]: where, what, what was expected, what to do. Nothing here
 //! prints; [`render`](render::render) makes text. To report something new, build a [`Diagnostic`] where it is found.
 
+pub mod nearest;
+
 /// A half-open range of bytes in one text.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, Hash, Default, PartialOrd, Ord)]
 pub struct Span {

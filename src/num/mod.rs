@@ -7,4 +7,5 @@
 
 pub mod elementary;
 pub mod interval;
+pub mod quotient;
 pub mod round;
