@@ -1,5 +1,6 @@
 //! Reading of unit strings, and how two units compare; sizes are definitions (SI brochure, Julian year).
 
+use proptest::prelude::*;
 use restpoint::model::units::{Agreement, compare, read};
 
 fn shown(text: &str) -> String {
@@ -115,5 +116,18 @@ fn what_is_shown_reads_back_as_the_same_unit() {
         let unit = read(text).unwrap();
         let again = read(&unit.to_string()).unwrap();
         assert_eq!(compare(&unit, &again), Agreement::Same, "{text}: {unit}");
+    }
+}
+
+proptest! {
+    #[test]
+    fn any_text_is_read_or_refused_at_whole_characters(text in "([ -~µ·²⁻−€é\u{200b}]|kt|m|yr|2|-1|/|\\*|\\^|\\(|\\)| |0\\.5|1e3|⁻¹|x-y|%){0,12}") {
+        match read(&text) {
+            Ok(unit) => {
+                let again = read(&unit.to_string());
+                prop_assert!(again.is_ok_and(|again| compare(&unit, &again) == Agreement::Same), "{} from {}", unit, text);
+            }
+            Err(slip) => prop_assert!(text.get(slip.span.start..slip.span.end).is_some(), "{:?} in {:?}", slip, text),
+        }
     }
 }

@@ -183,7 +183,7 @@ impl<'m> Walker<'m> {
                 other => other.clone(),
             },
             (_, [(piece, x)]) => match x {
-                Quantity::Of(unit) => self.plain(*piece, unit, &Reason::Plain(name_of(function))),
+                Quantity::Of(unit) => self.plain(*piece, unit, &Reason::Plain(function.row().name)),
                 other => other.clone(),
             },
             (Builtin::Min | Builtin::Max | Builtin::Clamp, all) => self.all_agree(all),
@@ -233,7 +233,7 @@ impl<'m> Walker<'m> {
             Quantity::Bare => &one,
             Quantity::Free => return,
         };
-        self.require(argument.0, got, &want, &Reason::Argument(name_of(function)));
+        self.require(argument.0, got, &want, &Reason::Argument(function.row().name));
     }
 
     fn all_agree(&mut self, arguments: &[(Piece<'m>, Quantity)]) -> Quantity {
@@ -286,20 +286,5 @@ pub(super) fn times(a: Quantity, b: &Quantity, power: f64) -> Quantity {
         (a, Quantity::Bare) => a,
         (Quantity::Bare, Quantity::Of(b)) => Quantity::Of(b.to_power(power)),
         (Quantity::Of(a), Quantity::Of(b)) => Quantity::Of(a.times(b, power)),
-    }
-}
-
-fn name_of(function: Builtin) -> &'static str {
-    match function {
-        Builtin::Exp => "exp",
-        Builtin::Ln => "ln",
-        Builtin::Log10 => "log10",
-        Builtin::Expm1 => "expm1",
-        Builtin::Log1p => "log1p",
-        Builtin::Tanh => "tanh",
-        Builtin::Logistic => "logistic",
-        Builtin::Holling2 => "holling2",
-        Builtin::Holling3 => "holling3",
-        _ => "the function",
     }
 }

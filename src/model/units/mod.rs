@@ -84,14 +84,15 @@ fn place_in(sources: &Sources, text: &Placed<String>, span: Span) -> Location {
 
 fn walker(model: &Model) -> Walker<'_> {
     let mut solver = Solver::default();
-    let mut quantity = |unit: Option<&Placed<String>>| match unit.map(|unit| read(&unit.value)) {
-        None => Quantity::Of(solver.unknown()),
+    let mut quantity = |name: &str, unit: Option<&Placed<String>>| match unit.map(|unit| read(&unit.value)) {
+        None => Quantity::Of(solver.unknown(name)),
         Some(Ok(unit)) => Quantity::Of(unit.into()),
         Some(Err(_)) => Quantity::Free,
     };
-    let time = quantity(Some(&model.time_unit));
-    let species = model.species.iter().map(|species| quantity(species.unit.as_ref())).collect();
-    let parameters = model.parameters.iter().map(|parameter| quantity(parameter.unit.as_ref())).collect();
+    let time = quantity("time", Some(&model.time_unit));
+    let species = model.species.iter().map(|species| quantity(&species.symbol, species.unit.as_ref())).collect();
+    let parameters =
+        model.parameters.iter().map(|parameter| quantity(&parameter.name, parameter.unit.as_ref())).collect();
     Walker {
         model,
         solver,

@@ -74,7 +74,7 @@ impl<'m> Walker<'m> {
                 self.expect(&term.formula, &want, &format!("what is taken of {}", self.symbol(term.species)))
             })
             .collect();
-        let money = Quantity::Of(self.solver.unknown());
+        let money = Quantity::Of(self.solver.unknown("money"));
         for price in &harvest.price {
             let amount = harvest.amounts.iter().position(|amount| amount.species == price.species);
             let amount = amount.and_then(|place| amounts.get(place)).cloned().unwrap_or(Quantity::Free);

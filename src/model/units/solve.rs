@@ -52,12 +52,14 @@ impl Term {
 pub(super) struct Solver {
     /// What each unknown is, by earlier unknowns alone, and the place that told.
     solutions: Vec<Option<(Term, Location)>>,
+    /// What each unknown is the unit of.
+    labels: Vec<String>,
 }
 
 /// The outcome of an equation that does not hold.
 #[derive(Debug, PartialEq)]
 pub(super) struct Mismatch {
-    /// The left side.
+    /// The left side, what is unknown as [`Solver::shown`] names it.
     pub(super) got: Unit,
     /// The right side.
     pub(super) want: Unit,
@@ -66,9 +68,10 @@ pub(super) struct Mismatch {
 }
 
 impl Solver {
-    /// A new unknown.
-    pub(super) fn unknown(&mut self) -> Term {
+    /// A new unknown, the unit of what `label` says.
+    pub(super) fn unknown(&mut self, label: &str) -> Term {
         self.solutions.push(None);
+        self.labels.push(label.to_owned());
         Term { unit: Unit::one(), unknowns: vec![(Unknown(self.solutions.len() - 1), 1.0)] }
     }
 
@@ -84,13 +87,23 @@ impl Solver {
         let Some(&(unknown, exponent)) = ratio.unknowns.iter().max_by_key(|(unknown, _)| unknown.0) else {
             return match compare(&got.unit, &want.unit) {
                 Agreement::Same => Ok(()),
-                agreement => Err(Mismatch { got: got.unit, want: want.unit, agreement }),
+                agreement => Err(Mismatch { got: self.shown(got), want: self.shown(want), agreement }),
             };
         };
         let mut rest = ratio;
         rest.unknowns.retain(|(other, _)| *other != unknown);
         self.solutions[unknown.0] = Some((rest.to_power(-1.0 / exponent), at));
         Ok(())
+    }
+
+    /// A unit for showing: what is unknown stands as the unit of its label, such as `[S]`.
+    fn shown(&self, term: Term) -> Unit {
+        let mut unit = term.unit;
+        for (unknown, power) in term.unknowns {
+            let label = self.labels.get(unknown.0).map_or("?", String::as_str);
+            unit.multiply(&Unit::named(&format!("[{label}]")), power);
+        }
+        unit
     }
 
     /// The unit that `term` stands for, if its unknowns are solved.
@@ -134,7 +147,7 @@ mod tests {
     #[test]
     fn substitution_solves_what_is_determined() {
         let mut solver = Solver::default();
-        let (a, h) = (solver.unknown(), solver.unknown());
+        let (a, h) = (solver.unknown("a"), solver.unknown("h"));
         // a h kt = 1 and a kt = 1/yr: the two parameters of a saturating intake.
         solver.equate(&a.clone().times(&h, 1.0).times(&term("kt"), 1.0), &Term::one(), Location::default()).unwrap();
         assert_eq!(solved(&solver, &h), None);
@@ -146,7 +159,7 @@ mod tests {
     #[test]
     fn roots_are_taken() {
         let mut solver = Solver::default();
-        let a = solver.unknown();
+        let a = solver.unknown("a");
         solver.equate(&a.to_power(2.0), &term("kg/yr^3"), Location::default()).unwrap();
         assert_eq!(solved(&solver, &a).as_deref(), Some("kg^0.5/yr^1.5"));
     }
@@ -154,7 +167,7 @@ mod tests {
     #[test]
     fn a_second_opinion_is_a_mismatch() {
         let mut solver = Solver::default();
-        let a = solver.unknown();
+        let a = solver.unknown("a");
         solver.equate(&a, &term("kt"), Location::default()).unwrap();
         let mismatch = solver.equate(&a, &term("t"), Location::default()).unwrap_err();
         assert_eq!((mismatch.got.to_string(), mismatch.want.to_string()), ("kt".into(), "t".into()));

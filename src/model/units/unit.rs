@@ -125,7 +125,7 @@ fn power_of((name, power): &(String, f64)) -> String {
     }
 }
 
-/// A number at six significant digits, without trailing zeros: rounding noise of logarithms goes.
+/// A number at twelve significant digits, without trailing zeros: rounding noise of logarithms goes.
 pub(super) fn plain(x: f64) -> String {
-    format!("{x:.5e}").parse::<f64>().map_or_else(|_| x.to_string(), |rounded| rounded.to_string())
+    format!("{x:.11e}").parse::<f64>().map_or_else(|_| x.to_string(), |rounded| rounded.to_string())
 }
