@@ -5,6 +5,7 @@
 
 pub mod ast;
 pub mod builtin;
+pub mod constant;
 pub mod function;
 pub mod graph;
 pub mod lex;

@@ -5,6 +5,14 @@
 //! never a second model.
 
 pub mod units;
+mod events;
+mod follow;
+pub mod load;
+mod messages;
+mod overlay;
+mod slips;
+mod tree;
+mod yaml;
 
 use std::collections::BTreeMap;
 
