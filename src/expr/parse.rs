@@ -73,8 +73,8 @@ impl Parser {
     }
 
     /// Says once that a limit is passed, and drops the rest of the formula.
-    fn refuse(&mut self, span: Span, message: String, help: &str) -> Tree {
-        self.slip(span, &message, "a shorter formula", help);
+    fn refuse(&mut self, span: Span, message: &str, help: &str) -> Tree {
+        self.slip(span, message, "a shorter formula", help);
         self.refused = true;
         self.at = self.tokens.len();
         hole(span)
@@ -369,7 +369,7 @@ impl Parser {
         let height = left.height.max(right.height) + 1;
         if height > HIGHEST_TREE {
             let message = format!("the formula has more than {HIGHEST_TREE} operators in a row");
-            return self.refuse(span, message, "split it through shorthand");
+            return self.refuse(span, &message, "split it through shorthand");
         }
         let kind = ExprKind::Binary(op, Box::new(left.expr), Box::new(right.expr));
         Tree { expr: Expr { kind, span }, height }
@@ -379,7 +379,7 @@ impl Parser {
     fn deeper<T>(&mut self, at: Span, rule: impl FnOnce(&mut Self) -> T) -> Option<T> {
         if self.depth >= DEEPEST_NESTING {
             let message = format!("the formula is nested more than {DEEPEST_NESTING} deep");
-            let _ = self.refuse(at, message, "split it through shorthand");
+            let _ = self.refuse(at, &message, "split it through shorthand");
             return None;
         }
         self.depth += 1;

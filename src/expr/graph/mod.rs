@@ -4,7 +4,7 @@
 //! parameters and f64 constants taken as exact numbers. Rules live in siblings, one job a file: `build` (constructors,
 //! which simplify only where the result equals the original *and is defined at the same points*), `saturate` (the
 //! monotone form s/(v + c s)), `facts` (signs and ranges that the rules rely on), `derive` (exact derivatives), `divide`
-//! (what a row is at x = 0, and the row divided by x), `express` (back to a syntax tree). To add an operation: a variant
+//! and `slope` (what a row is at x = 0, and the row divided by x), `express` (back to a syntax tree). To add an operation: a variant
 //! here, then follow the compiler.
 
 use std::collections::HashMap;
@@ -19,7 +19,9 @@ pub mod divide;
 pub mod express;
 pub mod facts;
 mod fold;
+pub mod read;
 pub mod saturate;
+mod slope;
 
 /// Index of a node in its [`Graph`]; operands have smaller indices than what uses them.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, Hash, PartialOrd, Ord)]
