@@ -1,210 +1,34 @@
 //! Which formulas are warned about, where, and which unit a parameter must have; dimensions worked out by hand.
 
-use std::collections::BTreeMap;
+mod draft;
 
-use restpoint::diag::{Location, Sources, Span};
-use restpoint::expr::parse::parse;
+use draft::Draft;
 use restpoint::model::units::{Units, check_units, malformed};
-use restpoint::model::{
-    Accounting, Aim, Block, Entry, Formula, Harvest, Model, Name, Parameter, ParameterId, Placed, Process, Role,
-    Scenario, Shorthand, ShorthandId, Species, SpeciesId, Term, TimeKind, When,
-};
 
-/// A model put together by hand; every formula stands in one text, so that places can be quoted from it.
-struct Draft {
-    model: Model,
-    text: String,
+trait Checks {
+    /// What is found, each warning as `piece: message`.
+    fn check(self, expected: &[&str]) -> Units;
+    /// As `check` for no warning, with the units found for the parameters.
+    fn infers(self, expected: &[Option<&str>]);
 }
 
-impl Draft {
-    fn new(time: &str, species: &[(&str, &str)], parameters: &[(&str, &str, f64)]) -> Self {
-        let mut draft = Draft { model: empty(), text: String::new() };
-        draft.model.time_unit = draft.placed(time);
-        for (row, (symbol, unit)) in species.iter().enumerate() {
-            let unit = draft.unit(unit);
-            draft.model.names.insert((*symbol).to_owned(), Name::Species(SpeciesId(row)));
-            draft.model.species.push(Species { unit, ..plain_species(symbol) });
-        }
-        for (row, (name, unit, value)) in parameters.iter().enumerate() {
-            let unit = draft.unit(unit);
-            draft.model.names.insert((*name).to_owned(), Name::Parameter(ParameterId(row)));
-            draft.model.parameters.push(Parameter { unit, ..plain_parameter(name, *value) });
-        }
-        draft
-    }
-
-    fn unit(&mut self, text: &str) -> Option<Placed<String>> {
-        (!text.is_empty()).then(|| self.placed(text))
-    }
-
-    fn placed(&mut self, text: &str) -> Placed<String> {
-        Placed { value: text.to_owned(), at: self.write(text) }
-    }
-
-    fn write(&mut self, text: &str) -> Location {
-        let start = self.text.len();
-        self.text.push_str(text);
-        self.text.push('\n');
-        Location { span: Span::new(start, start + text.len()), ..Location::default() }
-    }
-
-    fn formula(&mut self, text: &str) -> Formula {
-        let (expr, slips) = parse(text);
-        assert!(slips.is_empty(), "{text}: {slips:?}");
-        let at = self.write(text);
-        let origin = (at.span.start..=at.span.end).map(|byte| byte as u32).collect();
-        Formula { text: text.to_owned(), expr, at, origin }
-    }
-
-    fn terms(&mut self, terms: &[(&str, &str)]) -> Vec<Term> {
-        let term = |(symbol, text): &(&str, &str)| {
-            let row = self.model.species.iter().position(|species| species.symbol == *symbol);
-            assert!(row.is_some(), "no species {symbol}");
-            Term {
-                species: SpeciesId(row.unwrap_or_default()),
-                key_at: Location::default(),
-                formula: self.formula(text),
-            }
-        };
-        terms.iter().map(term).collect()
-    }
-
-    fn shorthand(mut self, name: &str, text: &str) -> Self {
-        let formula = self.formula(text);
-        self.model.names.insert(name.to_owned(), Name::Shorthand(ShorthandId(self.model.shorthand.len())));
-        self.model.shorthand.push(Shorthand { name: name.to_owned(), at: Location::default(), formula });
-        self
-    }
-
-    fn process(mut self, rate: &str, effect: &[(&str, &str)]) -> Self {
-        let process = Process {
-            name: "process".to_owned(),
-            at: Location::default(),
-            rate: self.formula(rate),
-            effect: self.terms(effect),
-        };
-        self.model.processes.push(process);
-        self
-    }
-
-    fn change(mut self, terms: &[(&str, &str)]) -> Self {
-        self.model.change = self.terms(terms);
-        self
-    }
-
-    fn next(mut self, terms: &[(&str, &str)]) -> Self {
-        self.model.time = TimeKind::Discrete { step: 1.0 };
-        self.model.next = self.terms(terms);
-        self
-    }
-
-    fn harvest(mut self, amounts: &[(&str, &str)], price: &[(&str, &str)], cost: &str) -> Self {
-        let harvest = Harvest {
-            name: "harvest".to_owned(),
-            at: Location::default(),
-            when: When::After,
-            accounting: Accounting::Takes,
-            amounts: self.terms(amounts),
-            price: self.terms(price),
-            cost: (!cost.is_empty()).then(|| self.formula(cost)),
-        };
-        self.model.harvest.push(harvest);
-        self
-    }
-
-    fn block(mut self, growth: &[&str], matrix: &[&str]) -> Self {
-        let growth = growth.iter().map(|text| Entry::Formula(self.formula(text))).collect();
-        let matrix = matrix.iter().map(|text| Entry::Formula(self.formula(text))).collect();
-        self.model.block = Some(Block { at: Location::default(), growth, matrix });
-        self
-    }
-
-    fn scenario(mut self, parameter: usize, text: &str) -> Self {
-        let values = vec![(ParameterId(parameter), self.formula(text))];
-        self.model.scenarios.push(Scenario {
-            name: "plan".to_owned(),
-            at: Location::default(),
-            values,
-            without: Vec::new(),
-            harvest: Vec::new(),
-            processes: Vec::new(),
-        });
-        self
-    }
-
-    /// What is found, each warning as `piece: message`.
-    fn check(mut self, expected: &[&str]) -> Units {
-        self.model.sources.add("model", self.text.clone());
-        let units = check_units(&self.model);
+impl Checks for Draft {
+    fn check(self, expected: &[&str]) -> Units {
+        let (model, text) = self.finish();
+        let units = check_units(&model);
         let found: Vec<String> = units
             .warnings
             .iter()
-            .map(|warning| format!("{}: {}", &self.text[warning.at.span.start..warning.at.span.end], warning.message))
+            .map(|warning| format!("{}: {}", &text[warning.at.span.start..warning.at.span.end], warning.message))
             .collect();
         assert_eq!(found, expected);
         units
     }
 
-    /// As `check` for no warning, with the units found for the parameters.
     fn infers(self, expected: &[Option<&str>]) {
         let units = self.check(&[]);
         let found: Vec<Option<&str>> = units.inferred.parameters.iter().map(Option::as_deref).collect();
         assert_eq!(found, expected);
-    }
-}
-
-fn plain_species(symbol: &str) -> Species {
-    Species {
-        name: symbol.to_owned(),
-        symbol: symbol.to_owned(),
-        at: Location::default(),
-        unit: None,
-        lower: 0.0,
-        upper: None,
-        population: None,
-        role: Role::Population,
-        aim: Aim::Keep,
-    }
-}
-
-fn plain_parameter(name: &str, value: f64) -> Parameter {
-    Parameter {
-        name: name.to_owned(),
-        at: Location::default(),
-        value,
-        value_at: Location::default(),
-        unit: None,
-        range: None,
-        draw: None,
-        min: None,
-        max: None,
-        note: None,
-        control: false,
-    }
-}
-
-fn empty() -> Model {
-    let nowhere = Placed { value: String::new(), at: Location::default() };
-    Model {
-        title: nowhere.clone(),
-        note: None,
-        time_unit: nowhere,
-        time: TimeKind::Continuous,
-        species: Vec::new(),
-        parameters: Vec::new(),
-        shorthand: Vec::new(),
-        processes: Vec::new(),
-        change: Vec::new(),
-        next: Vec::new(),
-        harvest: Vec::new(),
-        block: None,
-        now: Vec::new(),
-        scenarios: Vec::new(),
-        correlations: Vec::new(),
-        draws: None,
-        sketch: None,
-        names: BTreeMap::new(),
-        sources: Sources::default(),
     }
 }
 
@@ -375,13 +199,12 @@ fn a_model_without_units_is_silent() {
 
 #[test]
 fn malformed_units_are_errors_and_fit_anything() {
-    let mut draft = Draft::new("yr", &[("S", "kt")], &[("r", "1//yr", 1.0)]).change(&[("S", "r*S")]);
-    draft.model.sources.add("model", draft.text.clone());
-    let errors = malformed(&draft.model);
+    let (model, text) = Draft::new("yr", &[("S", "kt")], &[("r", "1//yr", 1.0)]).change(&[("S", "r*S")]).finish();
+    let errors = malformed(&model);
     let [error] = errors.as_slice() else { panic!("{errors:?}") };
     assert_eq!(
-        (&draft.text[error.at.span.start - 2..error.at.span.end], error.message.as_str()),
+        (&text[error.at.span.start - 2..error.at.span.end], error.message.as_str()),
         ("1//", "\"/\" cannot stand here in a unit")
     );
-    assert!(check_units(&draft.model).warnings.is_empty());
+    assert!(check_units(&model).warnings.is_empty());
 }

@@ -4,7 +4,6 @@
 //! trees with their places; `system` assembles them into rows of the graph. A [`Scenario`] is a small overlay on a model,
 //! never a second model.
 
-pub mod units;
 mod events;
 mod follow;
 pub mod load;
@@ -12,6 +11,7 @@ mod messages;
 mod overlay;
 mod slips;
 mod tree;
+pub mod units;
 mod yaml;
 
 use std::collections::BTreeMap;
