@@ -27,11 +27,20 @@ pub(super) fn parameters(subject: &Subject<'_>) -> String {
     let rows = model.parameters.iter().enumerate().map(|(row, parameter)| {
         let unit = unit_of(parameter.unit.as_ref().map(|unit| &unit.value), subject.units.inferred.parameters.get(row));
         let range = parameter.range.as_ref().map_or_else(String::new, |range| span(range.value[0], range.value[1]));
+        let control = if parameter.control { "control".to_owned() } else { String::new() };
         let draw = draw_of(model, ParameterId(row), parameter).unwrap_or_default();
-        vec![parameter.name.clone(), number(parameter.value), unit_cell(unit), range, clean(&draw), remarks(parameter)]
+        vec![
+            parameter.name.clone(),
+            number(parameter.value),
+            unit_cell(unit),
+            range,
+            clean(&draw),
+            control,
+            remarks(parameter),
+        ]
     });
     let inferred = &subject.units.inferred;
-    let mut text = headed(&["", "value", "unit", "plausible", "drawn", ""], &rows.collect::<Vec<_>>());
+    let mut text = headed(&["", "value", "unit", "plausible", "drawn", "", ""], &rows.collect::<Vec<_>>());
     if inferred.species.iter().chain(&inferred.parameters).any(Option::is_some) {
         text.push_str("  Units in brackets follow from the formulas.\n");
     }
@@ -112,25 +121,24 @@ fn standing(species: &Species) -> String {
 }
 
 fn remarks(parameter: &Parameter) -> String {
-    let control = parameter.control.then(|| "control".to_owned());
     let least = parameter.min.map(|least| format!("at least {}", number(least)));
     let most = parameter.max.map(|most| format!("at most {}", number(most)));
     let note = parameter.note.as_deref().map(clean);
-    join([control, least, most, note])
+    join([least, most, note])
 }
 
 fn harvest_rows(model: &Model, harvest: &Harvest, style: Style) -> Vec<Vec<String>> {
-    let verb = match (harvest.accounting, harvest.when, &model.time) {
-        (Accounting::Counts, _, _) => "counts",
-        (Accounting::Takes, When::Before, TimeKind::Discrete { .. }) => "takes before the step",
-        (Accounting::Takes, _, _) => "takes",
+    let (verb, when) = match (harvest.accounting, harvest.when, &model.time) {
+        (Accounting::Counts, _, _) => ("counts", ""),
+        (Accounting::Takes, When::Before, TimeKind::Discrete { .. }) => ("takes", " before the step"),
+        (Accounting::Takes, _, _) => ("takes", ""),
     };
-    let of_species = |verb: &str, term: &Term| {
-        let what = format!("{verb} {}:", symbol(model, term.species.0));
+    let of_species = |verb: &str, when: &str, term: &Term| {
+        let what = format!("{verb} {}{when}:", symbol(model, term.species.0));
         vec![String::new(), what, style.formula(&term.formula.expr)]
     };
-    let amounts = harvest.amounts.iter().map(|term| of_species(verb, term));
-    let prices = harvest.price.iter().map(|term| of_species("price of", term));
+    let amounts = harvest.amounts.iter().map(|term| of_species(verb, when, term));
+    let prices = harvest.price.iter().map(|term| of_species("price of", "", term));
     let cost = harvest.cost.iter().map(|cost| vec![String::new(), "cost:".to_owned(), style.formula(&cost.expr)]);
     named(&harvest.name, amounts.chain(prices).chain(cost).collect())
 }
