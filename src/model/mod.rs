@@ -12,6 +12,7 @@ mod overlay;
 mod slips;
 pub mod system;
 mod tree;
+pub mod units;
 mod yaml;
 
 use std::collections::BTreeMap;
