@@ -50,8 +50,8 @@ fn difference(f: &mut dyn FnMut(f64) -> f64, x: f64) -> f64 {
         step /= 2.0;
         assert!(k < 4);
     }
-    for order in 1..4 {
-        let scale = 4f64.powi(order as i32);
+    for order in 1..4usize {
+        let scale = [1.0, 4.0, 16.0, 64.0][order];
         for k in (order..4).rev() {
             table[k] = (scale * table[k] - table[k - 1]) / (scale - 1.0);
         }
@@ -225,9 +225,8 @@ fn lanes_equal_scalars_bit_for_bit() {
         outputs.extend((0..3).map(|i| graph.derivative(f, Variable::State(i))));
         let tape = Tape::new(&graph, &outputs);
         let points: Vec<_> = (0..150).map(|_| point(&mut source)).collect();
-        let column = |get: &dyn Fn(&([f64; 3], [f64; 4])) -> f64| points.iter().map(get).collect::<Vec<f64>>();
-        let states: Vec<Vec<f64>> = (0..3).map(|i| column(&|p| p.0[i])).collect();
-        let parameters: Vec<Vec<f64>> = (0..4).map(|i| column(&|p| p.1[i])).collect();
+        let states: Vec<Vec<f64>> = (0..3).map(|i| points.iter().map(|p| p.0[i]).collect()).collect();
+        let parameters: Vec<Vec<f64>> = (0..4).map(|i| points.iter().map(|p| p.1[i]).collect()).collect();
         let all: Vec<&[f64]> = states.iter().chain(&parameters).map(Vec::as_slice).collect();
         let mut draws = vec![vec![0.0; points.len()]; 4];
         let mut columns: Vec<&mut [f64]> = draws.iter_mut().map(Vec::as_mut_slice).collect();

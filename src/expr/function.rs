@@ -234,11 +234,11 @@ impl Quotient {
 
     /// The k-th derivative of f(u)/u, k ≤ 3.
     pub fn value(self, k: u8, u: f64) -> f64 {
-        num::quotient::quotient_f64(self.kind(), k, u, 0.0)
+        num::quotient::quotient_f64(self.kind(), u32::from(k), u, 0.0)
     }
 
     /// Enclosure of the k-th derivative of f(u)/u, k ≤ 3.
     pub fn interval(self, k: u8, u: Interval, defined: &mut bool) -> Interval {
-        num::quotient::quotient(self.kind(), k, u, Interval::ZERO, defined)
+        num::quotient::quotient(self.kind(), u32::from(k), u, Interval::ZERO, defined)
     }
 }

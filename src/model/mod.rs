@@ -11,7 +11,9 @@ pub mod load;
 mod messages;
 mod overlay;
 mod slips;
+pub mod system;
 mod tree;
+pub mod units;
 mod yaml;
 
 use std::collections::BTreeMap;

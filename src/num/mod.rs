@@ -1,7 +1,7 @@
 //! Pure numerics, one method a file: interval arithmetic and what rests on it. Knows nothing of models.
 //!
 //! [`interval`] is the number type that proofs are made of; [`round`] gives the directed bounds under it, [`elementary`]
-//! the scalar functions that every number type shares. To add a
+//! the scalar functions that every number type shares, [`quotient`] the functions f(u)/u that stay smooth at 0. To add a
 //! function, give its scalar form in [`elementary`], its enclosure in [`interval`], and rows of references to
 //! `tests/data/interval_references.py`.
 

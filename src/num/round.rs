@@ -32,7 +32,7 @@ fn raise_if(inexact: bool, x: f64) -> f64 {
 /// infinite, and in the one case in which an intermediate result overflows though the sum does not (an argument equal to
 /// the largest f64; Boldo, Graillat & Muller 2017); callers step outwards on NaN.
 #[inline]
-fn two_sum(a: f64, b: f64) -> (f64, f64) {
+pub(crate) fn two_sum(a: f64, b: f64) -> (f64, f64) {
     let sum = a + b;
     let b_seen = sum - a;
     let a_seen = sum - b_seen;
@@ -53,6 +53,29 @@ pub fn add_down(a: f64, b: f64) -> f64 {
 pub fn add_up(a: f64, b: f64) -> f64 {
     let (sum, error) = two_sum(a, b);
     raise_if((error > 0.0 || error.is_nan()) && (sum < f64::INFINITY), sum)
+}
+
+/// φ: |x| φ + η, rounded, takes any finite x at least one step outwards (Rump, Zimmermann, Boldo & Melquiond 2009), and
+/// just one where |x| is above 2^−1020, at most two below.
+const PHI: f64 = f64::EPSILON / 2.0 * (1.0 + f64::EPSILON);
+
+/// η: the smallest positive number.
+const ETA: f64 = 5e-324;
+
+/// [`add_up`] for two sums at once, which is twice as fast: all steps are the same for both, so one instruction does both.
+///
+/// NaN where an argument is −∞ or a sum overflows below −`f64::MAX`; the caller sees to these.
+#[inline]
+#[must_use]
+pub(crate) fn add_up_pair(a: [f64; 2], b: [f64; 2]) -> [f64; 2] {
+    let mut bounds = [0.0; 2];
+    for i in 0..2 {
+        let (sum, error) = two_sum(a[i], b[i]);
+        let inexact = u64::from(error > 0.0 || error.is_nan());
+        let step = (sum.abs() * PHI + ETA).to_bits() & inexact.wrapping_neg();
+        bounds[i] = sum + f64::from_bits(step);
+    }
+    bounds
 }
 
 /// A lower bound of a − b, as [`add_down`] of a and −b; a is not +∞, b is not −∞.

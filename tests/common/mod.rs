@@ -1,5 +1,6 @@
 //! What several test files share.
-#![allow(dead_code, reason = "each test file uses its own part")]
+#![allow(clippy::panic, clippy::unwrap_used, reason = "a test fails by panicking")]
+#![allow(dead_code, unreachable_pub, missing_docs, reason = "each file uses its own part")]
 
 use restpoint::expr::graph::{Graph, NodeId};
 use restpoint::expr::parse::parse;

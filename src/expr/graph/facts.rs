@@ -1,7 +1,8 @@
 //! What is known of a node for all states ≥ 0 and all parameters in their domains.
 //!
 //! Rules ask here before they drop a factor, cancel a quotient or take a zero for a zero; a fact that is not certain is
-//! simply not claimed. Ranges are rigorous (interval arithmetic); signs refine them where all states are *strictly*
+//! simply not claimed. Facts are about states: a parameter that leaves the model undefined (a divisor of 0) does so at every
+//! state alike, and no rule minds it. Ranges are rigorous (interval arithmetic); signs refine them where all states are *strictly*
 //! positive, which is how a face of the orthant is looked at from inside.
 
 use super::{Graph, NodeId, Operation};
@@ -81,7 +82,7 @@ impl Signs {
 pub struct Facts {
     /// Its values lie in here, wherever it is defined.
     pub range: Interval,
-    /// It is defined, finite and continuous at every state ≥ 0.
+    /// It is defined, finite and continuous at every state ≥ 0, if at any.
     pub total: bool,
     /// The same at every state > 0.
     pub total_inside: bool,
@@ -116,17 +117,22 @@ pub(super) fn of(graph: &Graph, operation: &Operation<NodeId>) -> Facts {
     } else {
         signs(operation, &operands, &mut defined_inside).and(Signs::of(range))
     };
-    let total = defined && operands.iter().all(|f| f.total);
-    let total_inside = defined_inside && operands.iter().all(|f| f.total_inside);
+    let state_dependent = matches!(operation, Operation::State(_) | Operation::Interaction { .. })
+        || operands.iter().any(|f| f.state_dependent);
+    // Where it depends on parameters alone whether this is defined, it is so at every state or at none.
+    let by_parameters = !state_dependent || divides_by_fixed(operation, &operands);
     Facts {
         range,
-        total,
-        total_inside,
+        total: (defined || by_parameters) && operands.iter().all(|f| f.total),
+        total_inside: (defined_inside || by_parameters) && operands.iter().all(|f| f.total_inside),
         inside,
-        state_dependent: matches!(operation, Operation::State(_) | Operation::Interaction { .. })
-            || operands.iter().any(|f| f.state_dependent),
+        state_dependent,
         states: leaf_states(operation) | operands.iter().fold(0, |all, f| all | f.states),
     }
+}
+
+fn divides_by_fixed(operation: &Operation<NodeId>, operands: &[Facts]) -> bool {
+    matches!(operation, Operation::Div(..)) && !operands[1].state_dependent
 }
 
 fn leaf_states(operation: &Operation<NodeId>) -> u64 {
@@ -161,7 +167,9 @@ fn range(graph: &Graph, operation: &Operation<NodeId>, defined: &mut bool) -> In
         Operation::Select([a, b, x, y]) => interval::select(r(a), r(b), r(x), r(y), defined),
         Operation::Saturation([s, c, v]) => interval::saturation(r(s), r(c), r(v), defined),
         Operation::Quotient(quotient, k, u) => quotient.interval(k, r(u), defined),
-        Operation::PowerQuotient(k, u, p) => quotient::quotient(quotient::Quotient::Powm1, k, r(u), r(p), defined),
+        Operation::PowerQuotient(k, u, p) => {
+            quotient::quotient(quotient::Quotient::Powm1, u32::from(k), r(u), r(p), defined)
+        }
         Operation::Interaction { .. } => Interval::ENTIRE,
     }
 }

@@ -40,8 +40,7 @@ impl<T: Number> GradientRun<'_, T> {
         let tape = self.run.tape;
         let (first, n) = (tape.first_state(), tape.states);
         assert_eq!(state.len(), n, "states");
-        self.run.registers.truncate(first);
-        self.run.registers.extend_from_slice(state);
+        self.run.registers[first..first + n].clone_from_slice(state);
         let mut domain = self.run.fixed_domain;
         for (position, operation) in tape.moving.iter().enumerate().skip(n) {
             let registers = &self.run.registers;
@@ -50,7 +49,7 @@ impl<T: Number> GradientRun<'_, T> {
             let (before, from_here) = self.slopes.split_at_mut(position * n);
             let known = Known { tape, registers, slopes: before };
             known.slope(operation, &value, tape.dependence[position], &mut from_here[..n], &mut domain);
-            self.run.registers.push(value);
+            self.run.registers[first + position] = value;
         }
         domain
     }

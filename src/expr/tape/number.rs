@@ -183,7 +183,7 @@ impl Number for f64 {
     }
 
     fn power_quotient(&self, k: u8, p: &Self, domain: &mut Domain) -> Self {
-        finite(num::quotient::quotient_f64(num::quotient::Quotient::Powm1, k, *self, *p), domain)
+        finite(num::quotient::quotient_f64(num::quotient::Quotient::Powm1, u32::from(k), *self, *p), domain)
     }
 
     fn is_zero(&self) -> bool {
@@ -256,7 +256,7 @@ impl Number for Interval {
     }
 
     fn power_quotient(&self, k: u8, p: &Self, domain: &mut Domain) -> Self {
-        num::quotient::quotient(num::quotient::Quotient::Powm1, k, *self, *p, &mut domain.defined)
+        num::quotient::quotient(num::quotient::Quotient::Powm1, u32::from(k), *self, *p, &mut domain.defined)
     }
 
     fn is_zero(&self) -> bool {

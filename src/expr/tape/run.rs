@@ -19,8 +19,8 @@ impl Tape {
     /// If there are not as many parameters as the tape takes.
     pub fn start<T: Number>(&self, parameters: &[T]) -> Run<'_, T> {
         assert_eq!(parameters.len(), self.parameters, "parameters");
-        let mut run = Run { tape: self, registers: Vec::new(), fixed_domain: Domain::CLEAN };
-        run.registers.reserve_exact(self.fixed.len() + self.moving.len());
+        let registers = vec![T::constant(0.0); self.fixed.len() + self.moving.len()];
+        let mut run = Run { tape: self, registers, fixed_domain: Domain::CLEAN };
         run.set_parameters(parameters);
         run
     }
@@ -33,14 +33,13 @@ impl<T: Number> Run<'_, T> {
     /// If there are not as many parameters as the tape takes.
     pub fn set_parameters(&mut self, parameters: &[T]) {
         assert_eq!(parameters.len(), self.tape.parameters, "parameters");
-        self.registers.clear();
         self.fixed_domain = Domain::CLEAN;
-        for operation in &self.tape.fixed {
+        for (register, operation) in self.tape.fixed.iter().enumerate() {
             let value = match *operation {
                 Operation::Parameter(i) => parameters[i].clone(),
                 _ => perform(operation, &self.registers, &[], &self.tape.blocks, &mut self.fixed_domain),
             };
-            self.registers.push(value);
+            self.registers[register] = value;
         }
     }
 
@@ -51,13 +50,14 @@ impl<T: Number> Run<'_, T> {
     pub fn at(&mut self, state: &[T]) -> Domain {
         let first = self.tape.first_state();
         assert_eq!(state.len(), self.tape.states, "states");
-        self.registers.truncate(first);
-        self.registers.extend_from_slice(state);
+        let states = first..first + self.tape.states;
+        self.registers[states.clone()].clone_from_slice(state);
         let mut domain = self.fixed_domain;
-        for operation in &self.tape.moving[self.tape.states..] {
-            let states = &self.registers[first..first + self.tape.states];
-            let value = perform(operation, &self.registers, states, &self.tape.blocks, &mut domain);
-            self.registers.push(value);
+        let rest = self.tape.moving[self.tape.states..].iter();
+        for (register, operation) in (states.end..).zip(rest) {
+            let known = &self.registers[..register];
+            let value = perform(operation, known, &known[states.clone()], &self.tape.blocks, &mut domain);
+            self.registers[register] = value;
         }
         domain
     }

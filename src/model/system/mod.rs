@@ -8,7 +8,7 @@ use crate::expr::graph::{Graph, Matrix, NodeId};
 use crate::expr::tape::Tape;
 use crate::num::interval::Interval;
 
-use super::{Accounting, Block, Draw, Entry, Harvest, Model, Process, SpeciesId, TimeKind, When, overlay};
+use super::{Accounting, Block, Draw, Entry, Harvest, Model, Process, SpeciesId, TimeKind, When};
 use translate::Translator;
 
 pub mod bounds;
@@ -96,7 +96,7 @@ impl System {
         let mut problems = Vec::new();
         let mut values = Vec::new();
         for scenario in 0..model.scenarios.len() {
-            match overlay::values(model, scenario, set) {
+            match model.values(scenario, set) {
                 Ok(found) => values.push(found),
                 Err(problem) => problems.push(problem),
             }
@@ -108,7 +108,7 @@ impl System {
         let block = model.block.as_ref().map(|block| add_block(model, &mut graph, block)).transpose()?;
         let mut plans = Vec::new();
         for (scenario, values) in values.into_iter().enumerate() {
-            plans.push(assemble(model, &mut graph, block, scenario, values)?);
+            plans.push(assemble(model, &mut graph, block.as_ref(), scenario, values)?);
         }
         Ok(Self { graph, plans })
     }
@@ -137,13 +137,20 @@ fn domains(model: &Model, values: &[Vec<f64>]) -> Vec<Interval> {
     model.parameters.iter().enumerate().map(domain).collect()
 }
 
-/// Adds the matrix, and returns its index with the growth nodes.
-fn add_block(model: &Model, graph: &mut Graph, block: &Block) -> Result<(usize, Vec<NodeId>), Vec<Diagnostic>> {
+/// A Lotka–Volterra block in the graph.
+struct BlockNodes {
+    /// Index of its matrix.
+    matrix: usize,
+    /// One node a species.
+    growth: Vec<NodeId>,
+}
+
+/// Adds the block's matrix and growth to the graph.
+fn add_block(model: &Model, graph: &mut Graph, block: &Block) -> Result<BlockNodes, Vec<Diagnostic>> {
     let order = model.species.len();
     let mut translator = Translator::new(model, graph);
     let growth = block.growth.iter().map(|entry| translator.entry(entry)).collect::<Result<Vec<_>, _>>()?;
-    let mut matrix =
-        Matrix { order, numbers: vec![0.0; order * order], formulas: vec![Vec::new(); order] };
+    let mut matrix = Matrix { order, numbers: vec![0.0; order * order], formulas: vec![Vec::new(); order] };
     for (position, entry) in block.matrix.iter().enumerate() {
         match entry {
             Entry::Number(value) => matrix.numbers[position] = *value,
@@ -153,18 +160,18 @@ fn add_block(model: &Model, graph: &mut Graph, block: &Block) -> Result<(usize, 
             }
         }
     }
-    Ok((graph.add_matrix(matrix), growth))
+    Ok(BlockNodes { matrix: graph.add_matrix(matrix), growth })
 }
 
 fn assemble(
     model: &Model,
     graph: &mut Graph,
-    block: Option<(usize, Vec<NodeId>)>,
+    block: Option<&BlockNodes>,
     scenario: usize,
     values: Vec<f64>,
 ) -> Result<Plan, Vec<Diagnostic>> {
-    let processes = overlay::processes(model, scenario);
-    let harvests = overlay::harvests(model, scenario);
+    let processes = model.processes_under(scenario);
+    let harvests = model.harvests_under(scenario);
     let mut translator = Translator::new(model, graph);
     let harvest_nodes = harvests.iter().map(|h| harvest(&mut translator, h)).collect::<Result<Vec<_>, _>>()?;
     let parts = match model.time {
@@ -191,7 +198,7 @@ fn continuous(
     translator: &mut Translator<'_>,
     model: &Model,
     processes: &[&Process],
-    block: Option<(usize, Vec<NodeId>)>,
+    block: Option<&BlockNodes>,
 ) -> Result<Parts, Vec<Diagnostic>> {
     let mut parts: Parts = vec![Vec::new(); model.species.len()];
     for process in processes {
@@ -207,9 +214,9 @@ fn continuous(
         let node = translator.formula(&term.formula)?;
         parts[term.species.0].push(Part { origin: Origin::Change, at: term.key_at, node });
     }
-    if let (Some((matrix, growth)), Some(block)) = (block, &model.block) {
-        for (i, growth) in growth.into_iter().enumerate() {
-            let interaction = translator.graph.interaction(matrix, i);
+    if let (Some(nodes), Some(block)) = (block, &model.block) {
+        for (i, &growth) in nodes.growth.iter().enumerate() {
+            let interaction = translator.graph.interaction(nodes.matrix, i);
             let per_capita = translator.graph.add(growth, interaction);
             let x = translator.graph.state(i);
             let node = translator.graph.mul(x, per_capita);

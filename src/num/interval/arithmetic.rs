@@ -6,7 +6,7 @@
 use std::ops::{Add, AddAssign, Mul, MulAssign, Neg, Sub, SubAssign};
 
 use super::Interval;
-use crate::num::round::{add_down, add_up, div_down, div_up, mul_down, mul_up};
+use crate::num::round::{add_down, add_up, add_up_pair, div_down, div_up, mul_down, mul_up};
 
 impl Neg for Interval {
     type Output = Self;
@@ -22,11 +22,19 @@ impl Add for Interval {
 
     #[inline]
     fn add(self, other: Self) -> Self {
-        if self.is_empty() || other.is_empty() {
-            return Self::EMPTY;
-        }
-        Self { lo: add_down(self.lo, other.lo), hi: add_up(self.hi, other.hi) }
+        let [minus_lo, hi] = add_up_pair([-self.lo, self.hi], [-other.lo, other.hi]);
+        // NaN fails the comparison.
+        if -minus_lo <= hi { Self { lo: -minus_lo, hi } } else { add_at_the_edge(self, other) }
     }
+}
+
+/// The sum where an argument is empty or an end overflows inwards.
+#[cold]
+fn add_at_the_edge(a: Interval, b: Interval) -> Interval {
+    if a.is_empty() || b.is_empty() {
+        return Interval::EMPTY;
+    }
+    Interval { lo: add_down(a.lo, b.lo), hi: add_up(a.hi, b.hi) }
 }
 
 impl Sub for Interval {

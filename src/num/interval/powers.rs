@@ -36,7 +36,7 @@ impl Interval {
         if self.is_empty() || p.is_empty() {
             return Self::EMPTY;
         }
-        if p.is_point() && p.lo.fract() == 0.0 {
+        if p.is_point() && is_whole(p.lo) {
             return self.whole_power(p.lo, defined);
         }
         *defined &= self.lo > 0.0 || (self.lo == 0.0 && p.lo > 0.0);
@@ -56,7 +56,7 @@ impl Interval {
             return self.recip(defined);
         }
         *defined &= n > 0.0 || !self.contains_zero();
-        if n % 2.0 == 0.0 {
+        if is_even(n) {
             whole_power_of_nonnegative(self.abs(), n)
         } else if self.lo >= 0.0 {
             whole_power_of_nonnegative(self, n)
@@ -111,13 +111,13 @@ fn nonnegative_power(x: Interval, p: Interval) -> Interval {
     }
 }
 
+/// Whole exponents up to this are multiplied out: some ten times faster than `pow`, for a bound that is a few steps wider.
+const MULTIPLIED_OUT: f64 = 8.0;
+
 /// A lower bound of x^p for x ≥ 0; of the limit where x or p is 0 or infinite.
 fn power_down(x: f64, p: f64) -> f64 {
-    if p == 2.0 {
-        return mul_down(x, x);
-    }
-    if p == 3.0 {
-        return mul_down(mul_down(x, x), x);
+    if let Some(bound) = multiplied_out(x, p, mul_down) {
+        return bound;
     }
     let value = elementary::pow(x, p);
     if power_is_exact(x, p, value) { value } else { value.next_down().max(0.0) }
@@ -125,23 +125,49 @@ fn power_down(x: f64, p: f64) -> f64 {
 
 /// An upper bound of x^p for x ≥ 0; of the limit where x or p is 0 or infinite.
 fn power_up(x: f64, p: f64) -> f64 {
-    if p == 2.0 {
-        return mul_up(x, x);
-    }
-    if p == 3.0 {
-        return mul_up(mul_up(x, x), x);
+    if let Some(bound) = multiplied_out(x, p, mul_up) {
+        return bound;
     }
     let value = elementary::pow(x, p);
     if power_is_exact(x, p, value) { value } else { value.next_up() }
 }
 
-/// Whether a correctly rounded power is certain to be exact: limits, 1^p, x⁰, x¹, powers of two, and whole powers of
-/// numbers so short that the result has at most 53 bits.
+/// x^p for a low whole p > 1 by squaring; every factor is ≥ 0, so each directed product keeps the direction.
+#[inline]
+fn multiplied_out(x: f64, p: f64, mul: impl Fn(f64, f64) -> f64) -> Option<f64> {
+    if !((2.0..=MULTIPLIED_OUT).contains(&p) && is_whole(p)) {
+        return None;
+    }
+    let mut power = x;
+    let digits = (p as i32).cast_unsigned();
+    for bit in (0..digits.ilog2()).rev() {
+        power = mul(power, power);
+        if digits >> bit & 1 == 1 {
+            power = mul(power, x);
+        }
+    }
+    Some(power)
+}
+
+/// Beyond this every f64 is a whole, even number; below, conversion to i64 is exact and, unlike `fract`, no library call.
+const ALL_EVEN: f64 = 9_007_199_254_740_992.0;
+
+fn is_whole(p: f64) -> bool {
+    p.abs() >= ALL_EVEN || (p as i64) as f64 == p
+}
+
+/// Whether the whole number `n` is even.
+fn is_even(n: f64) -> bool {
+    n.abs() >= ALL_EVEN || (n as i64) & 1 == 0
+}
+
+/// Whether a correctly rounded power is certain to be exact: limits, 1^p, x⁰, x¹, powers of two, whole powers of
+/// numbers so short that the result has at most 53 bits, and whole results below 2^53.
 fn power_is_exact(x: f64, p: f64, value: f64) -> bool {
     if x == 0.0 || x == 1.0 || x.is_infinite() || p == 0.0 || p == 1.0 || p.is_infinite() {
         return true;
     }
     let bits = f64::from(significant_bits(x));
-    let fits = bits == 1.0 || (p > 0.0 && bits * p <= 53.0);
-    p.fract() == 0.0 && fits && value > f64::MIN_POSITIVE && value <= f64::MAX
+    let fits = bits == 1.0 || (p > 0.0 && (bits * p <= 53.0 || (is_whole(x) && value < ALL_EVEN)));
+    is_whole(p) && fits && value > f64::MIN_POSITIVE && value <= f64::MAX
 }

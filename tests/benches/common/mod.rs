@@ -1,4 +1,6 @@
 //! Timing for benchmarks: contenders run in turn, so that a drifting machine slows all alike, and the best round counts.
+#![allow(clippy::print_stdout, reason = "a benchmark prints its table")]
+#![allow(dead_code, unreachable_pub, missing_docs, reason = "each file uses its own part")]
 
 use std::hint::black_box;
 use std::time::Instant;

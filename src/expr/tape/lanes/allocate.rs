@@ -1,5 +1,6 @@
 //! Which slot each value lives in: slots are reused once a value has been read for the last time.
 
+use super::fuse::{Kernel, fuse};
 use super::{Block, Register, Step};
 use crate::expr::graph::Operation;
 
@@ -26,35 +27,38 @@ impl Plan {
     }
 }
 
-/// Lays out `operations`, the first of which writes register `first`; registers before it are computed beforehand.
+/// Lays out `operations`, the first of which writes register `first`; registers before it are computed beforehand, and
+/// `safe` says of one that it is not 0.
 pub(super) fn plan(
     operations: &[Operation<Register>],
     first: usize,
     states: usize,
     outputs: &[Register],
     blocks: &[Block],
+    safe: &dyn Fn(Register) -> bool,
 ) -> Plan {
-    let mut layout = Layout::new(operations, first, outputs, blocks);
+    let kernels = fuse(operations, first, outputs, blocks, safe);
+    let mut layout = Layout::new(&kernels, first + operations.len(), first, outputs, blocks);
     let mut steps = Vec::new();
     let mut parameters = Vec::new();
     let mut state_slots = vec![0; states];
     // Inputs are written before any step runs, so they get their slots first, and keep them.
-    for (position, operation) in operations.iter().enumerate() {
-        match operation {
-            Operation::State(i) => state_slots[*i] = layout.pin((first + position) as Register),
-            Operation::Parameter(i) => parameters.push((*i, layout.pin((first + position) as Register))),
+    for (register, kernel) in &kernels {
+        match kernel {
+            Kernel::One(Operation::State(i)) => state_slots[*i] = layout.pin(*register),
+            Kernel::One(Operation::Parameter(i)) => parameters.push((*i, layout.pin(*register))),
             _ => {}
         }
     }
-    for (position, operation) in operations.iter().enumerate() {
-        if matches!(operation, Operation::State(_) | Operation::Parameter(_)) {
+    for (position, (register, kernel)) in kernels.iter().enumerate() {
+        if matches!(kernel, Kernel::One(Operation::State(_) | Operation::Parameter(_))) {
             continue;
         }
-        let placed = operation.map(|register| layout.slot(register) as Register);
+        let placed = kernel.map(|operand| layout.slot(operand) as Register);
         // The new slot is taken before the operands' are given back, so that no step reads what it writes.
-        let to = layout.place((first + position) as Register);
-        steps.push(Step { operation: placed, to });
-        layout.release(operation, position);
+        let to = layout.place(*register);
+        steps.push(Step { kernel: placed, to });
+        layout.release(kernel, position);
     }
     let outputs = outputs.iter().map(|&register| layout.slot(register)).collect();
     let blocks = blocks.iter().map(|block| layout.block(block)).collect();
@@ -72,11 +76,16 @@ struct Layout {
 }
 
 impl Layout {
-    fn new(operations: &[Operation<Register>], first: usize, outputs: &[Register], blocks: &[Block]) -> Self {
-        let registers = first + operations.len();
+    fn new(
+        kernels: &[(Register, Kernel)],
+        registers: usize,
+        first: usize,
+        outputs: &[Register],
+        blocks: &[Block],
+    ) -> Self {
         let mut last_use = vec![0; registers];
-        for (position, operation) in operations.iter().enumerate() {
-            for operand in operation.operands().into_iter().flatten() {
+        for (position, (_, kernel)) in kernels.iter().enumerate() {
+            for operand in kernel.operands() {
                 last_use[operand as usize] = position;
             }
         }
@@ -125,9 +134,9 @@ impl Layout {
         Block { formulas: block.formulas.iter().map(&mut row).collect(), ..block.clone() }
     }
 
-    fn release(&mut self, operation: &Operation<Register>, position: usize) {
+    fn release(&mut self, kernel: &Kernel, position: usize) {
         let mut given_back: Vec<usize> = Vec::new();
-        for operand in operation.operands().into_iter().flatten() {
+        for operand in kernel.operands() {
             let last = self.last_use[operand as usize] == position && operand as usize >= self.first;
             if let Some(slot) = self.slot_of[operand as usize].filter(|slot| last && !given_back.contains(slot)) {
                 given_back.push(slot);

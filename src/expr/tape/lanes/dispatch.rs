@@ -11,6 +11,10 @@ use super::{Lanes, perform};
 pub(super) fn execute(lanes: &mut Lanes) {
     #[cfg(target_arch = "x86_64")]
     {
+        if is_x86_feature_detected!("avx512f") {
+            // SAFETY: avx512f was detected just now.
+            return unsafe { execute_avx512(lanes) };
+        }
         if is_x86_feature_detected!("avx2") {
             // SAFETY: avx2 was detected just now.
             return unsafe { execute_avx2(lanes) };
@@ -22,5 +26,11 @@ pub(super) fn execute(lanes: &mut Lanes) {
 #[cfg(target_arch = "x86_64")]
 #[target_feature(enable = "avx2")]
 fn execute_avx2(lanes: &mut Lanes) {
+    perform::execute(lanes);
+}
+
+#[cfg(target_arch = "x86_64")]
+#[target_feature(enable = "avx512f")]
+fn execute_avx512(lanes: &mut Lanes) {
     perform::execute(lanes);
 }

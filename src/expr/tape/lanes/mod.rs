@@ -10,21 +10,28 @@ use crate::expr::graph::Operation;
 
 mod allocate;
 mod dispatch;
+mod fuse;
 mod perform;
 
 /// How many lanes run at once.
 pub const WIDTH: usize = 64;
 
-/// One value in each lane.
-pub(crate) type Lane = [f64; WIDTH];
+/// One value in each lane; aligned so that no vector load or store straddles two cache lines.
+#[derive(Clone, Copy, Debug)]
+#[repr(align(64))]
+struct Lane([f64; WIDTH]);
+
+impl Lane {
+    const ZERO: Self = Self([0.0; WIDTH]);
+}
 
 /// Boxed, so that a slot can be taken out and put back by its pointer while others are read.
 type Slots = Vec<Box<Lane>>;
 
-/// An operation on slots, and the slot that it writes.
+/// What is done with which slots, and the slot that it writes.
 #[derive(Clone, Copy, Debug)]
 struct Step {
-    operation: Operation<Register>,
+    kernel: fuse::Kernel,
     to: usize,
 }
 
@@ -39,8 +46,12 @@ pub struct Lanes {
     /// Where the states stand, for interaction rows.
     states: Vec<usize>,
     slots: Slots,
+    /// Holds what a step writes while its slot is taken out.
+    spare: Box<Lane>,
     /// Not 0 in lanes where an operation was not defined.
     undefined: Box<Lane>,
+    /// For each point of the latest run, whether every operation was defined there.
+    defined: Vec<bool>,
     fixed_undefined: bool,
 }
 
@@ -51,10 +62,12 @@ impl Tape {
     /// If there are not as many parameters as the tape takes.
     pub fn lanes_of_points(&self, parameters: &[f64]) -> Lanes {
         let run = self.start(parameters);
-        let plan = allocate::plan(&self.moving, self.first_state(), self.states, &self.outputs, &self.blocks);
-        let mut slots = vec![Box::new([0.0; WIDTH]); plan.slots];
+        let first = self.first_state();
+        let safe = |register: Register| run.registers.get(register as usize).is_some_and(|value| *value != 0.0);
+        let plan = allocate::plan(&self.moving, first, self.states, &self.outputs, &self.blocks, &safe);
+        let mut slots = vec![Box::new(Lane::ZERO); plan.slots];
         for &(register, slot) in &plan.pinned {
-            *slots[slot] = [run.registers[register as usize]; WIDTH];
+            slots[slot].0.fill(run.registers[register as usize]);
         }
         Self::lanes(plan, slots, !run.fixed_domain.defined)
     }
@@ -62,8 +75,8 @@ impl Tape {
     /// For many parameter vectors, each with its own state; inputs of [`Lanes::run`] are the states, then the parameters.
     pub fn lanes_of_draws(&self) -> Lanes {
         let all: Vec<_> = self.fixed.iter().chain(&self.moving).copied().collect();
-        let plan = allocate::plan(&all, 0, self.states, &self.outputs, &self.blocks);
-        let slots = vec![Box::new([0.0; WIDTH]); plan.slots];
+        let plan = allocate::plan(&all, 0, self.states, &self.outputs, &self.blocks, &|_| false);
+        let slots = vec![Box::new(Lane::ZERO); plan.slots];
         let parameters = plan.parameters(self.parameters);
         let mut lanes = Self::lanes(plan, slots, false);
         lanes.inputs.extend(parameters);
@@ -78,7 +91,9 @@ impl Tape {
             steps: plan.steps,
             outputs: plan.outputs,
             slots,
-            undefined: Box::new([0.0; WIDTH]),
+            spare: Box::new(Lane::ZERO),
+            undefined: Box::new(Lane::ZERO),
+            defined: Vec::new(),
             fixed_undefined,
         }
     }
@@ -93,25 +108,35 @@ impl Lanes {
     /// If the number of columns is not that of inputs or outputs, or their lengths differ.
     pub fn run(&mut self, inputs: &[&[f64]], outputs: &mut [&mut [f64]]) -> bool {
         let points = self.check(inputs, outputs);
-        let mut all_defined = true;
+        self.defined.clear();
+        self.defined.resize(points, !self.fixed_undefined);
         for from in (0..points).step_by(WIDTH) {
             let count = WIDTH.min(points - from);
             for (&slot, column) in self.inputs.iter().zip(inputs) {
-                self.slots[slot][..count].copy_from_slice(&column[from..from + count]);
+                self.slots[slot].0[..count].copy_from_slice(&column[from..from + count]);
             }
-            self.undefined.fill(0.0);
             dispatch::execute(self);
-            all_defined &= !self.fixed_undefined && self.undefined[..count].iter().all(|&u| u == 0.0);
+            self.note_undefined(from, count);
             for (&slot, column) in self.outputs.iter().zip(outputs.iter_mut()) {
-                column[from..from + count].copy_from_slice(&self.slots[slot][..count]);
+                column[from..from + count].copy_from_slice(&self.slots[slot].0[..count]);
             }
         }
-        all_defined
+        self.defined.iter().all(|&defined| defined)
     }
 
-    /// For each of the first 64 points of the latest batch, whether every operation was defined there.
-    pub fn defined(&self) -> [bool; WIDTH] {
-        self.undefined.map(|u| u == 0.0 && !self.fixed_undefined)
+    /// For each point of the latest run, whether every operation was defined there.
+    pub fn defined(&self) -> &[bool] {
+        &self.defined
+    }
+
+    fn note_undefined(&mut self, from: usize, count: usize) {
+        // Marks are never negative, so a bit in any of them is one that is not 0.
+        if self.undefined.0.iter().fold(0, |bits, mark| bits | mark.to_bits()) != 0 {
+            for (defined, &undefined) in self.defined[from..from + count].iter_mut().zip(self.undefined.0.iter()) {
+                *defined &= undefined == 0.0;
+            }
+            self.undefined.0.fill(0.0);
+        }
     }
 
     fn check(&self, inputs: &[&[f64]], outputs: &[&mut [f64]]) -> usize {
