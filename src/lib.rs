@@ -8,3 +8,4 @@ pub mod diag;
 pub mod expr;
 pub mod model;
 pub mod num;
+pub mod report;

@@ -1,1 +1,3 @@
+//! The restpoint program.
+
 fn main() {}

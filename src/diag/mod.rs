@@ -3,6 +3,10 @@
 //! Everything that is wrong with a file is a [`Diagnostic`]: where, what, what was expected, what to do. Nothing here
 //! prints; [`render`](render::render) makes text. To report something new, build a [`Diagnostic`] where it is found.
 
+pub mod cleanse;
+pub mod nearest;
+pub mod render;
+
 /// A half-open range of bytes in one text.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, Hash, Default, PartialOrd, Ord)]
 pub struct Span {
@@ -82,7 +86,7 @@ pub struct Diagnostic {
     pub at: Location,
     /// What is wrong, as one plain sentence without a full stop; values in double quotes.
     pub message: String,
-    /// What was expected there; shown beside the caret. May be empty.
+    /// What was expected there, as it reads after "expected"; shown beside the caret. May be empty.
     pub expected: String,
     /// What to do about it. May be empty.
     pub help: String,

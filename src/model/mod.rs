@@ -4,6 +4,18 @@
 //! trees with their places; `system` assembles them into rows of the graph. A [`Scenario`] is a small overlay on a model,
 //! never a second model.
 
+mod events;
+mod findings;
+mod follow;
+pub mod load;
+mod messages;
+mod overlay;
+mod slips;
+pub mod system;
+mod tree;
+pub mod units;
+mod yaml;
+
 use std::collections::BTreeMap;
 
 use crate::diag::{Location, Sources, Span};

@@ -1,0 +1,226 @@
+//! Forward gradients of a tape over any number type.
+//!
+//! Beside each value runs its gradient with respect to the states, only in the components that it depends on. Over
+//! intervals the gradient is an enclosure of all derivatives (and, at kinks, of both branches: Clarke 1983).
+
+use super::number::{Domain, Number};
+use super::run::{Run, perform};
+use super::{Register, Tape};
+use crate::expr::graph::Operation;
+
+/// A tape with its parameters set, giving values and gradients.
+#[derive(Clone, Debug)]
+pub struct GradientRun<'t, T> {
+    run: Run<'t, T>,
+    /// One row of `states` components for each moving register.
+    slopes: Vec<T>,
+}
+
+impl Tape {
+    /// Runs the fixed part for these parameters, and makes room for gradients.
+    ///
+    /// # Panics
+    /// If there are not as many parameters as the tape takes.
+    pub fn start_gradient<T: Number>(&self, parameters: &[T]) -> GradientRun<'_, T> {
+        let run = self.start(parameters);
+        let mut slopes = vec![T::constant(0.0); self.moving.len() * self.states];
+        for i in 0..self.states {
+            slopes[i * self.states + i] = T::constant(1.0);
+        }
+        GradientRun { run, slopes }
+    }
+}
+
+impl<T: Number> GradientRun<'_, T> {
+    /// Values and gradients at a state of one value a species.
+    ///
+    /// # Panics
+    /// If there are not as many values as the tape has states.
+    pub fn at(&mut self, state: &[T]) -> Domain {
+        let tape = self.run.tape;
+        let (first, n) = (tape.first_state(), tape.states);
+        assert_eq!(state.len(), n, "states");
+        self.run.registers[first..first + n].clone_from_slice(state);
+        let mut domain = self.run.fixed_domain;
+        for (position, operation) in tape.moving.iter().enumerate().skip(n) {
+            let registers = &self.run.registers;
+            let states = &registers[first..first + n];
+            let value = perform(operation, registers, states, &tape.blocks, &mut domain);
+            let (before, from_here) = self.slopes.split_at_mut(position * n);
+            let known = Known { tape, registers, slopes: before };
+            known.slope(operation, &value, tape.dependence[position], &mut from_here[..n], &mut domain);
+            self.run.registers[first + position] = value;
+        }
+        domain
+    }
+
+    /// An output's value, after [`GradientRun::at`].
+    pub fn output(&self, index: usize) -> &T {
+        self.run.output(index)
+    }
+
+    /// An output's gradient: one component a state; `None` where it does not depend on any.
+    pub fn gradient(&self, index: usize) -> Option<&[T]> {
+        let tape = self.run.tape;
+        let position = (tape.outputs[index] as usize).checked_sub(tape.first_state())?;
+        Some(&self.slopes[position * tape.states..(position + 1) * tape.states])
+    }
+}
+
+/// What is known when an operation's gradient is due.
+struct Known<'k, T> {
+    tape: &'k Tape,
+    registers: &'k [T],
+    slopes: &'k [T],
+}
+
+impl<T: Number> Known<'_, T> {
+    fn value(&self, register: Register) -> &T {
+        &self.registers[register as usize]
+    }
+
+    /// The gradient of an operand and the components that it has; none for what does not move.
+    fn of(&self, register: Register) -> (&[T], u64) {
+        let n = self.tape.states;
+        match (register as usize).checked_sub(self.tape.first_state()) {
+            Some(position) => (&self.slopes[position * n..(position + 1) * n], self.tape.dependence[position]),
+            None => (&[], 0),
+        }
+    }
+
+    fn slope(&self, operation: &Operation<Register>, own: &T, mask: u64, out: &mut [T], domain: &mut Domain) {
+        let one = || T::constant(1.0);
+        match *operation {
+            Operation::Neg(a) => self.each(mask, out, |j| self.component(a, j).map(T::neg)),
+            Operation::Add(a, b) => self.each(mask, out, |j| self.sum(a, b, j, T::add, T::clone)),
+            Operation::Sub(a, b) => self.each(mask, out, |j| self.sum(a, b, j, T::sub, T::neg)),
+            Operation::Mul(a, b) => self.linear(mask, out, [(a, self.value(b)), (b, self.value(a))]),
+            Operation::Div(_, b) if self.of(b).1 == 0 => self.each(mask, out, |j| {
+                let slope = self.component(operation.operands()[0]?, j)?;
+                Some(slope.div(self.value(b), domain))
+            }),
+            Operation::Div(a, b) => {
+                let reciprocal = one().div(self.value(b), domain);
+                let shift = own.mul(&reciprocal).neg();
+                self.linear(mask, out, [(a, &reciprocal), (b, &shift)]);
+            }
+            Operation::PowInt(a, n) => {
+                let outer = T::constant(f64::from(n)).mul(&self.value(a).whole_power(n - 1, domain));
+                self.linear(mask, out, [(a, &outer)]);
+            }
+            Operation::Pow(a, b) => self.power(a, b, own, mask, out, domain),
+            Operation::Apply(function, a) => {
+                let [_, outer, ..] = function.derivatives(self.value(a), domain);
+                self.linear(mask, out, [(a, &outer)]);
+            }
+            Operation::Min(a, b) => self.switch([a, b, a, b], mask, out, domain),
+            Operation::Max(a, b) => self.switch([a, b, b, a], mask, out, domain),
+            Operation::Select(operands) => self.switch(operands, mask, out, domain),
+            Operation::Saturation(operands) => self.saturation(operands, own, mask, out, domain),
+            Operation::Quotient(quotient, k, u) => {
+                let outer = self.value(u).quotient(quotient, k + 1, domain);
+                self.linear(mask, out, [(u, &outer)]);
+            }
+            Operation::PowerQuotient(k, u, p) => {
+                // An exponent that moves with the state has no place in any rule that makes this operation.
+                let outer = self.value(u).power_quotient(k + 1, self.value(p), domain);
+                self.linear(mask, out, [(u, &outer)]);
+            }
+            Operation::Interaction { block, row } => self.interaction(block, row, out),
+            Operation::Constant(_) | Operation::State(_) | Operation::Parameter(_) => {}
+        }
+    }
+
+    /// Writes each component of the mask; one that has no contribution is 0.
+    fn each(&self, mask: u64, out: &mut [T], mut component: impl FnMut(usize) -> Option<T>) {
+        let all = self.tape.states > 64;
+        for (j, slot) in out.iter_mut().enumerate() {
+            if all || mask & (1 << j) != 0 {
+                *slot = component(j).unwrap_or_else(|| T::constant(0.0));
+            }
+        }
+    }
+
+    fn component(&self, register: Register, j: usize) -> Option<&T> {
+        let (slopes, mask) = self.of(register);
+        let there = mask != 0 && (self.tape.states > 64 || mask & (1 << j) != 0);
+        if there { slopes.get(j) } else { None }
+    }
+
+    fn sum(
+        &self,
+        a: Register,
+        b: Register,
+        j: usize,
+        both: impl Fn(&T, &T) -> T,
+        second: impl Fn(&T) -> T,
+    ) -> Option<T> {
+        match (self.component(a, j), self.component(b, j)) {
+            (Some(a), Some(b)) => Some(both(a, b)),
+            (Some(a), None) => Some(a.clone()),
+            (None, Some(b)) => Some(second(b)),
+            (None, None) => None,
+        }
+    }
+
+    /// Σ coefficient · gradient.
+    fn linear<const N: usize>(&self, mask: u64, out: &mut [T], parts: [(Register, &T); N]) {
+        self.each(mask, out, |j| {
+            let mut sum: Option<T> = None;
+            for (register, coefficient) in parts {
+                if let Some(slope) = self.component(register, j) {
+                    let part = slope.mul(coefficient);
+                    sum = Some(match sum {
+                        Some(sum) => sum.add(&part),
+                        None => part,
+                    });
+                }
+            }
+            sum
+        });
+    }
+
+    fn power(&self, a: Register, b: Register, own: &T, mask: u64, out: &mut [T], domain: &mut Domain) {
+        let (base, exponent) = (self.value(a), self.value(b));
+        let outer = exponent.mul(&base.pow(&exponent.sub(&T::constant(1.0)), domain));
+        if self.of(b).1 == 0 {
+            return self.linear(mask, out, [(a, &outer)]);
+        }
+        let through_exponent = own.mul(&base.apply(crate::expr::function::Function::Ln, domain));
+        self.linear(mask, out, [(a, &outer), (b, &through_exponent)]);
+    }
+
+    /// The branch taken, component by component, so that equal branches give their common slope.
+    fn switch(&self, [a, b, x, y]: [Register; 4], mask: u64, out: &mut [T], domain: &mut Domain) {
+        let zero = T::constant(0.0);
+        self.each(mask, out, |j| {
+            let branches = [self.component(x, j).unwrap_or(&zero), self.component(y, j).unwrap_or(&zero)];
+            Some(T::select([self.value(a), self.value(b), branches[0], branches[1]], domain))
+        });
+    }
+
+    /// s' (v/D)/D − v' w/D − c' w², D = v + c s, w = s/D.
+    fn saturation(&self, [s, c, v]: [Register; 3], own: &T, mask: u64, out: &mut [T], domain: &mut Domain) {
+        let grown = self.value(c).mul(self.value(s));
+        let den = self.value(v).add(&grown);
+        let free = T::saturation([self.value(v), &T::constant(1.0), &grown], domain);
+        let rising = free.div(&den, domain);
+        if self.of(v).1 == 0 && self.of(c).1 == 0 {
+            return self.linear(mask, out, [(s, &rising)]);
+        }
+        let crowding = own.div(&den, domain).neg();
+        let steepening = own.mul(own).neg();
+        self.linear(mask, out, [(s, &rising), (v, &crowding), (c, &steepening)]);
+    }
+
+    fn interaction(&self, block: usize, row: usize, out: &mut [T]) {
+        let block = &self.tape.blocks[block];
+        let numbers = &block.numbers[row * block.order..(row + 1) * block.order];
+        for (slot, &m) in out.iter_mut().zip(numbers) {
+            *slot = T::constant(m);
+        }
+        for &(column, register) in &block.formulas[row] {
+            out[column] = self.value(register).clone();
+        }
+    }
+}
