@@ -14,9 +14,13 @@ use crate::num::interval::Interval;
 /// Warns at the process or harvest that takes most; once for each of them and species.
 pub(super) fn find(scene: &Scene<'_>) -> Vec<Diagnostic> {
     let mut findings = Findings::default();
+    let mut graph = scene.system.graph.clone();
     for (scenario, plan) in scene.plans() {
         for (row, &node) in plan.rows.iter().enumerate() {
             let species = SpeciesId(row);
+            if graph.vanishes_at_zero(node, row) {
+                continue;
+            }
             let suspects = suspects(scene, scenario, plan, species);
             if let Some(suspect) = culprit(scene, plan, species, node, &suspects) {
                 findings.add(scenario, warning(scene, species, suspect));
@@ -112,9 +116,6 @@ fn culprit<'p>(
     row: NodeId,
     suspects: &'p [Suspect],
 ) -> Option<&'p Suspect> {
-    if scene.system.graph.clone().vanishes_at_zero(row, species.0) {
-        return None;
-    }
     let outputs: Vec<NodeId> = [row].into_iter().chain(suspects.iter().map(|suspect| suspect.node)).collect();
     let tape = Tape::new(&scene.system.graph, &outputs);
     let mut face = scene.ranges.clone();

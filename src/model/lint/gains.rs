@@ -5,10 +5,10 @@
 
 use super::scene::{Scene, enclosures};
 use crate::diag::Diagnostic;
-use crate::expr::graph::NodeId;
+use crate::expr::graph::{Graph, NodeId};
 use crate::expr::tape::Tape;
 use crate::model::system::Plan;
-use crate::model::{Species, SpeciesId, TimeKind};
+use crate::model::{Species, TimeKind};
 use crate::num::interval::Interval;
 
 /// Warns at the species.
@@ -44,33 +44,39 @@ fn warning(species: &Species, falls_only: bool, grows_only: bool) -> Option<Diag
 
 /// Bounds on what moves each species: the hull of the summands of its row, or of its relative change in a map.
 fn changes(scene: &Scene<'_>, plan: &Plan) -> Vec<Interval> {
-    let rows = (0..scene.model.species.len()).map(SpeciesId);
     match scene.model.time {
-        TimeKind::Continuous => rows.map(|row| summands(scene, plan, row)).collect(),
-        TimeKind::Discrete { .. } => rows.map(|row| relative_change(scene, plan, row)).collect(),
+        TimeKind::Continuous => {
+            let nodes = plan.parts.iter().map(|parts| parts.iter().map(|part| part.node).collect());
+            hulls(&scene.system.graph, scene, plan, &nodes.collect::<Vec<_>>(), Interval::ZERO)
+        }
+        TimeKind::Discrete { .. } => {
+            let mut graph = scene.system.graph.clone();
+            let rows = plan.rows.iter().enumerate();
+            let nodes = rows.map(|(row, node)| vec![relative_change(&mut graph, *node, row)]).collect::<Vec<_>>();
+            hulls(&graph, scene, plan, &nodes, Interval::EMPTY)
+        }
     }
 }
 
-/// From the least to the greatest value of any one summand.
-fn summands(scene: &Scene<'_>, plan: &Plan, row: SpeciesId) -> Interval {
-    let parts = plan.parts.get(row.0).map_or(&[][..], |parts| parts);
-    let nodes: Vec<NodeId> = parts.iter().map(|part| part.node).collect();
-    let bounds = scene.enclosures(plan, &nodes);
-    bounds.map_or(Interval::ENTIRE, |bounds| bounds.into_iter().fold(Interval::ZERO, Interval::hull))
+/// next x/x − 1, or next x − x where the next state is not a multiple of x.
+fn relative_change(graph: &mut Graph, node: NodeId, row: usize) -> NodeId {
+    if let Some(factor) = graph.divide(node, row).quotient {
+        let one = graph.one();
+        return graph.sub(factor, one);
+    }
+    let state = graph.state(row);
+    graph.sub(node, state)
 }
 
-/// next x/x − 1, or next x − x where the next state is not a multiple of x.
-fn relative_change(scene: &Scene<'_>, plan: &Plan, row: SpeciesId) -> Interval {
-    let Some(&node) = plan.rows.get(row.0) else { return Interval::ENTIRE };
-    let mut graph = scene.system.graph.clone();
-    let change = if let Some(factor) = graph.divide(node, row.0).quotient {
-        let one = graph.one();
-        graph.sub(factor, one)
-    } else {
-        let state = graph.state(row.0);
-        graph.sub(node, state)
-    };
-    let tape = Tape::new(&graph, &[change]);
-    let bounds = enclosures(&tape, &plan.values, &scene.ranges);
-    bounds.and_then(|bounds| bounds.first().copied()).unwrap_or(Interval::ENTIRE)
+/// For each group of nodes the hull of their values over the box and of `least`; everything where one may be undefined.
+fn hulls(graph: &Graph, scene: &Scene<'_>, plan: &Plan, groups: &[Vec<NodeId>], least: Interval) -> Vec<Interval> {
+    let bounds = |nodes: &[NodeId]| enclosures(&Tape::new(graph, nodes), &plan.values, &scene.ranges);
+    let hull = |bounds: &mut dyn Iterator<Item = Interval>| bounds.fold(least, Interval::hull);
+    // One tape for all is enough, unless something somewhere is undefined.
+    if let Some(all) = bounds(&groups.concat()) {
+        let mut all = all.into_iter();
+        return groups.iter().map(|group| hull(&mut all.by_ref().take(group.len()))).collect();
+    }
+    let alone = |group: &Vec<NodeId>| bounds(group).map_or(Interval::ENTIRE, |bounds| hull(&mut bounds.into_iter()));
+    groups.iter().map(alone).collect()
 }

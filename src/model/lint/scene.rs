@@ -4,7 +4,6 @@
 //! of square roots of primes, Weyl 1916).
 
 use crate::diag::Diagnostic;
-use crate::expr::graph::NodeId;
 use crate::expr::tape::Tape;
 use crate::expr::tape::run::Run;
 use crate::model::system::bounds::Bound;
@@ -12,8 +11,10 @@ use crate::model::system::{Plan, System};
 use crate::model::{Model, SpeciesId};
 use crate::num::interval::Interval;
 
-/// Species up to which every corner is tried; beyond, only those with one species or all but one at its side.
+/// Species up to which every corner is tried; beyond, the lowest and the highest.
 const MOST_FOR_ALL_CORNERS: usize = 6;
+/// Species up to which each is put to its sides alone, the others all low, all high and in the middle.
+const MOST_FOR_ALL_SIDES: usize = 64;
 /// Points of the low-discrepancy set.
 const SPREAD_POINTS: u32 = 64;
 /// Operations that one search for a witness may take.
@@ -40,11 +41,6 @@ impl<'m> Scene<'m> {
     /// Each scenario's equations, with its index.
     pub(super) fn plans(&self) -> impl Iterator<Item = (usize, &'m Plan)> {
         self.system.plans.iter().enumerate()
-    }
-
-    /// The values of some nodes over the whole box; `None` where one may be undefined.
-    pub(super) fn enclosures(&self, plan: &Plan, nodes: &[NodeId]) -> Option<Vec<Interval>> {
-        enclosures(&Tape::new(&self.system.graph, nodes), &plan.values, &self.ranges)
     }
 
     /// The symbol of a species.
@@ -110,32 +106,31 @@ pub(super) fn enclosures(tape: &Tape, values: &[f64], ranges: &[Interval]) -> Op
 
 fn points(ranges: &[Interval]) -> Vec<Vec<f64>> {
     let middle: Vec<f64> = ranges.iter().map(|range| range.mid()).collect();
-    let mut points = corners(ranges);
-    for (place, range) in ranges.iter().enumerate() {
-        for side in [range.lo(), range.hi()] {
-            let mut point = middle.clone();
-            point[place] = side;
-            points.push(point);
+    let ends = [ranges.iter().map(|range| range.lo()).collect(), ranges.iter().map(|range| range.hi()).collect()];
+    let mut points = if ranges.len() <= MOST_FOR_ALL_CORNERS { corners(ranges) } else { ends.to_vec() };
+    points.push(middle.clone());
+    points.extend((1..=SPREAD_POINTS).map(|index| spread(ranges, index)));
+    let beside = if ranges.len() <= MOST_FOR_ALL_SIDES { ranges } else { &[] };
+    for (place, range) in beside.iter().enumerate() {
+        for base in ends.iter().chain([&middle]) {
+            points.extend([range.lo(), range.hi()].map(|side| with(base, place, side)));
         }
     }
-    points.extend((1..=SPREAD_POINTS).map(|index| spread(ranges, index)));
-    points.push(middle);
     points
 }
 
-/// Corners, the lowest first; of many species those next to the lowest and to the highest.
+fn with(base: &[f64], place: usize, value: f64) -> Vec<f64> {
+    let mut point = base.to_vec();
+    point[place] = value;
+    point
+}
+
+/// Every corner, the lowest first.
 fn corners(ranges: &[Interval]) -> Vec<Vec<f64>> {
-    let count = ranges.len();
     let side = |range: &Interval, is_high: bool| if is_high { range.hi() } else { range.lo() };
-    let corner = |is_high: &dyn Fn(usize) -> bool| -> Vec<f64> {
-        ranges.iter().enumerate().map(|(place, range)| side(range, is_high(place))).collect()
-    };
-    if count <= MOST_FOR_ALL_CORNERS {
-        return (0..1usize << count).map(|bits| corner(&|place| bits >> place & 1 == 1)).collect();
-    }
-    let ends = [corner(&|_| false), corner(&|_| true)];
-    let next_to_ends = (0..count).flat_map(|one| [corner(&|place| place == one), corner(&|place| place != one)]);
-    ends.into_iter().chain(next_to_ends).collect()
+    let corner =
+        |bits: usize| ranges.iter().enumerate().map(|(place, range)| side(range, bits >> place & 1 == 1)).collect();
+    (0..1usize << ranges.len()).map(corner).collect()
 }
 
 /// Point `index` of the low-discrepancy set, strictly inside the box.
