@@ -7,6 +7,7 @@
 mod events;
 mod findings;
 mod follow;
+pub mod lint;
 pub mod load;
 mod messages;
 mod overlay;
