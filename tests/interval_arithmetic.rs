@@ -181,6 +181,19 @@ fn squares_are_products_that_know_it() {
     }
 }
 
+/// Short numbers make v + c s exact in f64, and the quotient comparable without rounding.
+#[test]
+fn saturation_bounds_hold_exactly() {
+    let mut random = Random(6);
+    for _ in 0..200_000 {
+        let mut short = || (random.below(1 << 20) + 1) as f64 / 1024.0;
+        let (s, c, v) = (short(), short(), short());
+        let result = saturation(Interval::point(s), Interval::point(c), Interval::point(v), &mut true);
+        check_inside("/", [s, v + c * s], result, quotient_against);
+        assert!(steps(result.lo(), result.hi()) <= 2, "{s} / ({v} + {c} {s}) in {result:?}");
+    }
+}
+
 #[test]
 fn division_says_where_it_is_undefined() {
     let (inf, iv) = (f64::INFINITY, Interval::new);

@@ -98,37 +98,44 @@ fn nonnegative_power(x: Interval, p: Interval) -> Interval {
     if p.lo >= 0.0 {
         let for_lo = if low >= 1.0 { p.lo } else { p.hi };
         let for_hi = if high >= 1.0 { p.hi } else { p.lo };
-        Interval { lo: power_down(low, for_lo), hi: power_up(high, for_hi) }
+        between_powers((low, for_lo), (high, for_hi))
     } else if p.hi <= 0.0 {
         let for_lo = if high >= 1.0 { p.lo } else { p.hi };
         let for_hi = if low >= 1.0 { p.hi } else { p.lo };
-        Interval { lo: power_down(high, for_lo), hi: power_up(low, for_hi) }
+        between_powers((high, for_lo), (low, for_hi))
     } else {
-        Interval {
-            lo: power_down(low, p.hi).min(power_down(high, p.lo)),
-            hi: power_up(low, p.lo).max(power_up(high, p.hi)),
-        }
+        let (falling, rising) = (between_powers((high, p.lo), (low, p.lo)), between_powers((low, p.hi), (high, p.hi)));
+        falling.hull(rising)
     }
+}
+
+/// From the least of some powers to the greatest, each given as base and exponent.
+fn between_powers(least: (f64, f64), greatest: (f64, f64)) -> Interval {
+    let at_least = elementary::pow(least.0, least.1);
+    let at_greatest = if least == greatest { at_least } else { elementary::pow(greatest.0, greatest.1) };
+    Interval { lo: power_below(least, at_least), hi: power_above(greatest, at_greatest) }
 }
 
 /// Whole exponents up to this are multiplied out: some ten times faster than `pow`, for a bound that is a few steps wider.
 const MULTIPLIED_OUT: f64 = 8.0;
 
-/// A lower bound of x^p for x ≥ 0; of the limit where x or p is 0 or infinite.
+/// A lower bound of x^p for x ≥ 0 and whole p; of the limit where x is 0 or infinite.
 fn power_down(x: f64, p: f64) -> f64 {
-    if let Some(bound) = multiplied_out(x, p, mul_down) {
-        return bound;
-    }
-    let value = elementary::pow(x, p);
+    multiplied_out(x, p, mul_down).unwrap_or_else(|| power_below((x, p), elementary::pow(x, p)))
+}
+
+/// An upper bound of x^p for x ≥ 0 and whole p; of the limit where x is 0 or infinite.
+fn power_up(x: f64, p: f64) -> f64 {
+    multiplied_out(x, p, mul_up).unwrap_or_else(|| power_above((x, p), elementary::pow(x, p)))
+}
+
+/// A lower bound of x^p, x ≥ 0, from its rounded value.
+fn power_below((x, p): (f64, f64), value: f64) -> f64 {
     if power_is_exact(x, p, value) { value } else { value.next_down().max(0.0) }
 }
 
-/// An upper bound of x^p for x ≥ 0; of the limit where x or p is 0 or infinite.
-fn power_up(x: f64, p: f64) -> f64 {
-    if let Some(bound) = multiplied_out(x, p, mul_up) {
-        return bound;
-    }
-    let value = elementary::pow(x, p);
+/// An upper bound of x^p, x ≥ 0, from its rounded value.
+fn power_above((x, p): (f64, f64), value: f64) -> f64 {
     if power_is_exact(x, p, value) { value } else { value.next_up() }
 }
 

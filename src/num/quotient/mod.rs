@@ -42,6 +42,9 @@ pub const HIGHEST_DERIVATIVE: u32 = 3;
 /// defined where every p exceeds k (the value is k! there), or where p is one whole number from 0 to k (the derivative is
 /// 0 everywhere). The result is that of the part in the domain, empty where there is none.
 ///
+/// At one point its relative width is below 1e-12 (near a sign change of tanh's derivatives, the absolute one). Over boxes
+/// it is as sharp for all but tanh in u; there, and in p, it overestimates by a factor that goes to 1 as the box shrinks.
+///
 /// # Panics
 /// When k > 3.
 #[must_use]

@@ -60,21 +60,28 @@ pub(super) fn enclose(k: u32, u: Interval) -> Interval {
     if u.is_empty() {
         return u;
     }
-    let value = by_parts(k, u);
-    if !(1..=2).contains(&k) || u.is_point() || !u.is_bounded() {
+    let by_ends = (1..=2).contains(&k) && u.is_bounded() && !u.is_point();
+    let orders = if by_ends { k + 1 } else { k };
+    let near = g_at(orders, u.mig());
+    let far = if u.is_point() { near } else { g_at(orders, u.mag()) };
+    let over = [0, 1, 2, 3].map(|j| near[j].hull(far[j]));
+    let value = by_parts(k, u, over);
+    if !by_ends {
         return value;
     }
-    let slope = by_parts(k + 1, u);
-    if slope.nonnegative() || (-slope).nonnegative() {
-        let ends = by_parts(k, Interval::point(u.lo())).hull(by_parts(k, Interval::point(u.hi())));
-        return value.intersect(ends);
+    let slope = by_parts(orders, u, over);
+    if !slope.nonnegative() && !(-slope).nonnegative() {
+        return value;
     }
-    value
+    let end = |x: f64| {
+        let known = [(u.mig(), near), (u.mag(), far)].into_iter().find(|(at, _)| *at == x.abs());
+        by_parts(k, Interval::point(x), known.map_or_else(|| g_at(k, x.abs()), |(_, g)| g))
+    };
+    value.intersect(end(u.lo()).hull(end(u.hi())))
 }
 
-/// qₖ over u from g and its derivatives over u².
-fn by_parts(k: u32, u: Interval) -> Interval {
-    let [g0, g1, g2, g3] = g_over(k, u);
+/// qₖ over u, from g and its derivatives over u².
+fn by_parts(k: u32, u: Interval, [g0, g1, g2, g3]: [Interval; 4]) -> Interval {
     let times = |factor: f64, x: Interval| Interval::point(factor) * x;
     let value = match k {
         0 => g0,
@@ -84,7 +91,7 @@ fn by_parts(k: u32, u: Interval) -> Interval {
     };
     let largest = LARGEST[k as usize];
     let value = value.intersect(Interval::new(-largest, largest));
-    if u.mig() >= 1.0 { value.intersect(by_recursion(k, u)) } else { value }
+    if k > 0 && u.mig() >= 1.0 { value.intersect(by_recursion(k, u)) } else { value }
 }
 
 /// From u qₖ = f⁽ᵏ⁾ − k qₖ₋₁: where u² nears overflow or u is unbounded, the parts say nothing.
@@ -101,20 +108,10 @@ fn squared_secant(u: Interval) -> Interval {
         if u == f64::INFINITY {
             return Interval::ZERO;
         }
-        let decay = Interval::point(-2.0 * u).exp();
+        let decay = (Interval::point(-2.0) * Interval::point(u)).exp();
         (Interval::point(4.0) * decay).div((Interval::ONE + decay).square(), &mut true)
     };
     at(u.lo()).hull(at(u.hi()))
-}
-
-/// g, g', g'', g''' up to the k-th over u²; they shrink in size as |u| grows.
-fn g_over(k: u32, u: Interval) -> [Interval; 4] {
-    let near = g_at(k, u.mig());
-    if u.is_point() {
-        return near;
-    }
-    let far = g_at(k, u.mag());
-    [0, 1, 2, 3].map(|j| near[j].hull(far[j]))
 }
 
 /// g, g', g'', g''' up to the k-th at u² for one u ≥ 0, which may be ∞; 0 beyond the k-th.
@@ -124,44 +121,49 @@ fn g_at(k: u32, u: f64) -> [Interval; 4] {
         return g;
     }
     let x = Interval::point(u);
-    if u * u < 0.5 {
-        (0..=k).for_each(|j| g[j as usize] = g_by_series(j, x.square()));
+    g[0] = if u == 0.0 {
+        Interval::ONE
+    } else if u < 1e-8 {
+        // 1 − u²/3 ≤ g ≤ 1; the quotient would be coarse where u is subnormal.
+        Interval::new(1f64.next_down(), 1.0)
     } else {
+        x.tanh().div(x, &mut true)
+    };
+    if u * u < 0.5 {
+        (1..=k).for_each(|j| g[j as usize] = g_by_series(j as usize, x.square()));
+    } else if k > 0 {
         g_by_recursion(x, &mut g);
-    }
-    if u != 0.0 {
-        g[0] = g[0].intersect(x.tanh().div(x, &mut true));
     }
     g
 }
 
+/// What part of the coefficients a series needs: up to which v, and the last one.
+const LAST_FOR: [(f64, usize); 3] = [(0.01, 12), (0.1, 18), (1.0, COEFFICIENTS.len() - 1)];
+
 /// g⁽ʲ⁾(v) = Σ (−1)ⁿ aₙ n (n − 1) … (n − j + 1) v^(n−j) for 0 ≤ v ≤ ½, by Horner's rule.
 ///
-/// From the last coefficient on, terms shrink by less than 0.406 · ½ · 32/29 < ½, so what is left out is less than twice
-/// the first term that is left out, which in turn is less than half the last one that is in.
-fn g_by_series(j: u32, v: Interval) -> Interval {
-    let last = COEFFICIENTS.len() - 1;
+/// From the last coefficient n ≥ 12 on, terms shrink by at most 0.406 · ½ · 13/10 < ⅓, so that all that is left out is less
+/// than half of the last term that is in.
+fn g_by_series(j: usize, v: Interval) -> Interval {
+    let last = LAST_FOR.iter().find(|(most, _)| v.hi() <= *most).map_or(COEFFICIENTS.len() - 1, |(_, last)| *last);
     let term = |n: usize| {
         let a = COEFFICIENTS[n];
-        let exact = if n == 0 { Interval::ONE } else { Interval::new(a.next_down(), a.next_up()) };
         let sign = if n.is_multiple_of(2) { 1.0 } else { -1.0 };
-        let falling: f64 = (0..j as usize).map(|i| n as f64 - i as f64).product();
-        Interval::point(sign * falling) * exact
+        let falling: f64 = (0..j).map(|i| n as f64 - i as f64).product();
+        Interval::point(sign * falling) * Interval::new(a.next_down(), a.next_up())
     };
-    let j = j as usize;
     let sum = (j..=last).rev().fold(Interval::ZERO, |sum, n| sum * v + term(n));
     let power = (j..last).fold(Interval::ONE, |power, _| power * v);
     let remainder = (term(last) * power).mag();
     sum + Interval::new(-remainder, remainder)
 }
 
-/// For u ≥ √½, by differentiating 2v g' + g = S, S = 1/cosh²(√v), D = d/dv:
+/// g' and on from g, for u ≥ √½, by differentiating 2v g' + g = S, S = 1/cosh²(√v), D = d/dv:
 /// 2v g⁽ʲ⁾ = D^(j−1) S − (2j − 1) g⁽ʲ⁻¹⁾, with D S = −g S. It loses up to three digits, most at the near end.
 fn g_by_recursion(u: Interval, g: &mut [Interval; 4]) {
     let point = Interval::point;
     let twice = point(2.0) * u.square();
     let s = squared_secant(u);
-    g[0] = u.tanh().div(u, &mut true);
     g[1] = (s - g[0]).div(twice, &mut true);
     let slope = -g[0] * s;
     g[2] = (slope - point(3.0) * g[1]).div(twice, &mut true);

@@ -18,6 +18,9 @@ const MAX_TERMS: u32 = 150;
 /// A series stops where a term falls below this part of the sum: well under the rounding of the sum itself.
 const NEGLIGIBLE: f64 = 1e-19;
 
+/// Below this |u| a quotient by u would be coarse, because numbers around it are subnormal or nearly so.
+const NO_QUOTIENT: f64 = 1e-290;
+
 /// Every Jₖ(u) over u.
 pub(super) fn exponential_over(k: u32, u: Interval) -> Interval {
     if u.is_empty() {
@@ -36,14 +39,16 @@ fn exponential(k: u32, u: f64) -> Interval {
     if u.is_infinite() {
         return if u > 0.0 { unbounded() } else { Interval::ZERO };
     }
-    let x = Interval::point(u);
-    if u != 0.0 && (k == 0 || u.abs() >= 4.0) {
+    let (x, first) = (Interval::point(u), fraction(1.0, order + 1.0));
+    if u == 0.0 {
+        return first;
+    }
+    if k == 0 || u.abs() >= 4.0 {
         return exponential_by_recursion(k, x);
     }
     let later = |n: f64| over(x.abs(), Interval::point(n + 1.0)).hi();
-    let first = fraction(1.0, order + 1.0);
-    if u >= 0.0 {
-        let ratio = |j: f64| x * over(fraction(order + 1.0 + j, order + 2.0 + j), Interval::point(j + 1.0));
+    if u > 0.0 {
+        let ratio = |j: f64| x * fraction(order + 1.0 + j, (order + 2.0 + j) * (j + 1.0));
         series(first, ratio, later)
     } else {
         let ratio = |j: f64| over(-x, Interval::point(order + 2.0 + j));
@@ -102,6 +107,11 @@ fn power(k: u32, u: f64, p: f64) -> Interval {
     }
     let (exponent, log) = (Interval::point(p), Interval::point(u).log1p(&mut true));
     let size = log.mag();
+    // The integrand lies between tᵏ and tᵏ (1 + u)^(p − k − 1).
+    let bounds = || Interval::ONE.hull(plus_one_to_the(u, exponent - Interval::point(border))) * at_zero;
+    if size < NO_QUOTIENT {
+        return bounds();
+    }
     let value = if distance_to_orders(k, p) * size >= 2.5 {
         power_by_recursion(k, u, exponent)
     } else if k > 0 && size < if p < border { 0.75 } else { 0.35 } {
@@ -109,8 +119,7 @@ fn power(k: u32, u: f64, p: f64) -> Interval {
     } else {
         power_by_logarithm(k, u, log, exponent)
     };
-    // The integrand lies between tᵏ and tᵏ (1 + u)^(p − k − 1).
-    value.intersect(Interval::ONE.hull(plus_one_to_the(u, exponent - Interval::point(border))) * at_zero)
+    if value.is_bounded() { value.intersect(Interval::NONNEGATIVE) } else { value.intersect(bounds()) }
 }
 
 /// Iₖ(−1, p) = ∫ tᵏ (1 − t)^(p − k − 1) dt = k!/(p (p − 1) … (p − k)) for p > k, else unbounded.
@@ -141,7 +150,7 @@ fn power_by_series(k: u32, u: f64, p: Interval) -> Interval {
     };
     let step = |j: f64| x * (r - Interval::point(j));
     if straight {
-        let ratio = |j: f64| over(step(j) * fraction(order + 1.0 + j, order + 2.0 + j), Interval::point(j + 1.0));
+        let ratio = |j: f64| step(j) * fraction(order + 1.0 + j, (order + 2.0 + j) * (j + 1.0));
         series(first, ratio, later)
     } else {
         let ratio = |j: f64| over(step(j), Interval::point(order + 2.0 + j));
