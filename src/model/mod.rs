@@ -11,6 +11,7 @@
 mod events;
 mod findings;
 mod follow;
+pub mod lint;
 pub mod load;
 mod messages;
 mod overlay;
