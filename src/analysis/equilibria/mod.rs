@@ -1,0 +1,198 @@
+//! Every equilibrium in the search box, each with a proof, and what could not be decided.
+//!
+//! [`find`] is the way in. `faces` walks over who is present, `search` finds all roots on one face, `newton` proves them,
+//! `border` settles zeros, `remains` says what the open boxes probably are, `above` looks beyond the box. Published by
+//! others and recalled from memory: interval branch and prune (Hansen & Walster 2004; Neumaier 1990).
+
+mod above;
+mod border;
+mod faces;
+mod newton;
+mod remains;
+mod search;
+
+use crate::expr::graph::{Graph, NodeId};
+use crate::expr::tape::Tape;
+use crate::num::interval::Interval;
+use faces::{Face, Faces};
+use newton::Region;
+use search::{Limits, Search};
+
+pub use remains::{Probably, Unresolved};
+
+/// Whether the rates have a derivative at an equilibrium.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Derivative {
+    /// They have.
+    Exists,
+    /// Two branches of min, max or abs meet there: one-sided derivatives only.
+    Kink,
+    /// The rates are not differentiable, or not defined, there: 0/0, ln 0, √0.
+    Missing,
+}
+
+/// One equilibrium.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Equilibrium {
+    /// Abundances, as good as f64 gives them, in the species' units; exactly 0 for those absent.
+    pub state: Vec<f64>,
+    /// Holds the equilibrium; a point 0 for those absent.
+    pub enclosure: Vec<Interval>,
+    /// Whether it is proved that exactly one equilibrium is in the enclosure.
+    pub proven: bool,
+    /// Whether the rates have a derivative there.
+    pub derivative: Derivative,
+}
+
+impl Equilibrium {
+    /// Whether a species is there at all.
+    pub fn has(&self, species: usize) -> bool {
+        self.enclosure[species] != Interval::ZERO
+    }
+
+    /// Bound of the error of each abundance, relative (absolute for a state of 0).
+    pub fn radius(&self) -> Vec<f64> {
+        let radius = |(side, &x): (&Interval, &f64)| {
+            let off = (*side - Interval::point(x)).mag();
+            if x == 0.0 { off } else { (Interval::point(off).div(Interval::point(x.abs()), &mut true)).hi() }
+        };
+        self.enclosure.iter().zip(&self.state).map(radius).collect()
+    }
+}
+
+/// How much work a search may take.
+pub struct Budget<'b> {
+    /// Boxes on each face.
+    pub boxes: usize,
+    /// Asked often; the search ends soon after it says so.
+    pub stop: &'b (dyn Fn() -> bool + Sync),
+}
+
+/// The equations to be solved: rates of change, or for a map what it adds to the state.
+pub struct Problem<'p> {
+    /// One row a species.
+    pub rows: &'p [NodeId],
+    /// The value of every parameter.
+    pub values: &'p [f64],
+    /// The search box: lower and upper side, one pair a species.
+    pub sides: &'p [[f64; 2]],
+}
+
+/// What is known of the equilibria in the box.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Equilibria {
+    /// By number present, then by species, then by state.
+    pub list: Vec<Equilibrium>,
+    /// What could not be decided.
+    pub unresolved: Vec<Unresolved>,
+    /// Whether it is proved that the box holds no others.
+    pub complete: bool,
+    /// Whether it is proved that there are none with an abundance above the box either.
+    pub none_above: bool,
+    /// Boxes looked at, on all faces.
+    pub boxes: usize,
+    /// Faces looked at.
+    pub faces: usize,
+}
+
+/// A root on a face, in the coordinates of all species.
+struct Candidate {
+    equilibrium: Equilibrium,
+    /// Holds no other root of the face's equations; by species.
+    unique: Region,
+}
+
+/// Finds every equilibrium in the box.
+///
+/// # Panics
+/// If rows and sides are not as many as the graph has states.
+pub fn find(graph: &mut Graph, problem: &Problem<'_>, budget: &Budget<'_>) -> Equilibria {
+    let n = graph.states();
+    assert!(problem.rows.len() == n && problem.sides.len() == n, "one row and two sides for each of {n} species");
+    let reaches_zero = problem.sides.iter().map(|side| side[0] <= 0.0).collect();
+    let mut faces = Faces::new(graph, problem.rows, reaches_zero);
+    let mut whole = Whole { candidates: Vec::new(), open: Vec::new(), boxes: 0, faces: 0, none_above: true };
+    while let Some(face) = faces.next(graph) {
+        whole.faces += 1;
+        whole.look_at(graph, &face, problem, budget);
+    }
+    whole.finish(graph, problem)
+}
+
+/// What was found on the faces so far.
+struct Whole {
+    candidates: Vec<Candidate>,
+    /// Open boxes by species, and whether the budget left them open.
+    open: Vec<(Region, bool)>,
+    boxes: usize,
+    faces: usize,
+    none_above: bool,
+}
+
+impl Whole {
+    fn look_at(&mut self, graph: &mut Graph, face: &Face, problem: &Problem<'_>, budget: &Budget<'_>) {
+        let n = graph.states();
+        let tape = Tape::over(graph, &face.rows, &face.variables);
+        let side = |&i: &usize| Interval::new(problem.sides[i][0], problem.sides[i][1]);
+        let region: Region = face.variables.iter().map(side).collect();
+        let limits = Limits { boxes: budget.boxes, stop: &|| (budget.stop)() };
+        let found = Search::run(&tape, problem.values, region.clone(), &limits);
+        self.boxes += found.boxes;
+        self.none_above = self.none_above && above::is_empty(&tape, problem.values, &region);
+        for root in found.roots {
+            if let Some(settled) = border::settle(graph, face, &root, problem) {
+                match settled {
+                    border::Settled::Root(candidate) => self.candidates.push(candidate),
+                    border::Settled::Open(region) => self.open.push((region, false)),
+                }
+            }
+        }
+        for region in found.open {
+            self.open.push((everywhere(&region, face, n), found.stopped));
+        }
+    }
+
+    fn finish(mut self, graph: &mut Graph, problem: &Problem<'_>) -> Equilibria {
+        border::merge(&mut self.candidates);
+        let tape = Tape::new(graph, problem.rows);
+        for candidate in &mut self.candidates {
+            border::look_at_derivative(&tape, problem.values, &mut candidate.equilibrium);
+        }
+        let unresolved = remains::explain(&tape, problem, &self.candidates, self.open);
+        let mut list: Vec<Equilibrium> = self.candidates.into_iter().map(|candidate| candidate.equilibrium).collect();
+        list.sort_by(order);
+        let complete = unresolved.is_empty();
+        Equilibria {
+            list,
+            complete,
+            none_above: self.none_above && complete,
+            unresolved,
+            boxes: self.boxes,
+            faces: self.faces,
+        }
+    }
+}
+
+/// By number present, then by who is present in species order, then by state.
+fn order(a: &Equilibrium, b: &Equilibrium) -> std::cmp::Ordering {
+    let present = |e: &Equilibrium| -> Vec<bool> { (0..e.state.len()).map(|i| e.has(i)).collect() };
+    let count = |present: &[bool]| present.iter().filter(|&&p| p).count();
+    let (pa, pb) = (present(a), present(b));
+    count(&pa).cmp(&count(&pb)).then_with(|| pb.cmp(&pa)).then_with(|| {
+        a.state
+            .iter()
+            .zip(&b.state)
+            .map(|(x, y)| x.total_cmp(y))
+            .find(|o| o.is_ne())
+            .unwrap_or(std::cmp::Ordering::Equal)
+    })
+}
+
+/// A region of a face among all species.
+fn everywhere(region: &[Interval], face: &Face, n: usize) -> Region {
+    let mut all = vec![Interval::ZERO; n];
+    for (&i, side) in face.variables.iter().zip(region) {
+        all[i] = *side;
+    }
+    all
+}
