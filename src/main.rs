@@ -1,3 +1,7 @@
-//! The restpoint program.
+//! The restpoint program; see the library.
 
-fn main() {}
+use std::process::ExitCode;
+
+fn main() -> ExitCode {
+    restpoint::cli::main()
+}

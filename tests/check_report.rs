@@ -220,7 +220,7 @@ fn data_holds_what_the_text_holds() {
     check("/parameters/0/unit", json!("1/yr"));
     check("/parameters/0/unit_inferred", json!(true));
     check("/parameters/1/draw", json!("uniform"));
-    check("/parameters/7/draw", json!("uniform"));
+    check("/parameters/7/draw", json!(null));
     check("/parameters/6/draw", json!(null));
     check("/harvest/0/takes", json!({"S": "q*E*S"}));
     check("/scenarios/0/values", json!({"E": "0.5*E"}));

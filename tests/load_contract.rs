@@ -111,7 +111,7 @@ fn a_discrete_model_with_every_word() {
     let model = model(
         "title: T\ntime: {unit: month, step: 0.5}\n\
          species:\n  young hare: {symbol: η, population: hare, lower: 1, upper: 9, unit: ind/km2}\n\
-         \x20 adult hare: {symbol: A, population: hare, aim: remove, note: a pest}\n  fleet: {role: fleet}\n  grass: {role: resource}\n\
+         \x20 adult hare: {symbol: A, population: hare, aim: remove}\n  fleet: {role: fleet}\n  grass: {role: resource}\n\
          shorthand: {later: earlier + 1, earlier: 2*A}\n\
          next: {η: later, A: '0.5*A +\n    η', fleet: fleet, grass: grass}\n\
          harvest: {hunt: {when: before, takes: {A: 0.1*A}, price: {A: 2}, cost: 1}, seen: {counts: {η: η}}}\n",

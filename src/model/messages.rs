@@ -13,6 +13,9 @@ use crate::diag::{Diagnostic, Location};
 /// Characters of a value from the file that a message repeats.
 const VALUE_LIMIT: usize = 200;
 
+/// Digits of a number that are written without an exponent.
+const DIGITS: usize = 20;
+
 macro_rules! messages {
     ($($name:ident: $what:literal, $expected:literal, $help:literal;)*) => {
         /// One thing that can be wrong.
@@ -176,6 +179,12 @@ impl Message {
         let [what, expected, help] = self.row().map(|template| fill(template, values));
         Diagnostic::error(at, what).expected(expected).help(help)
     }
+}
+
+/// A number for a message: with an exponent where it has more digits than anyone reads.
+pub(super) fn digits(value: f64) -> String {
+    let plain = value.to_string();
+    if plain.len() <= DIGITS { plain } else { format!("{value:e}") }
 }
 
 fn fill(template: &str, values: &[&dyn Display]) -> String {

@@ -12,7 +12,7 @@ use crate::diag::nearest::nearest;
 use crate::diag::{Diagnostic, Location, Sources};
 use crate::model::Placed;
 use crate::model::findings::Findings;
-use crate::model::messages::Message;
+use crate::model::messages::{Message, digits};
 use crate::model::tree::{Entry, Kind, Node};
 use crate::model::yaml::Typed;
 
@@ -221,7 +221,7 @@ impl<'f> Desk<'f> {
         if value > 0.0 {
             return Some(value);
         }
-        self.say(Message::NotPositive, node.at, &[&name, &value]);
+        self.say(Message::NotPositive, node.at, &[&name, &digits(value)]);
         None
     }
 
@@ -231,7 +231,7 @@ impl<'f> Desk<'f> {
         if value >= 0.0 {
             return Some(value);
         }
-        self.say(Message::Negative, node.at, &[&name, &value]);
+        self.say(Message::Negative, node.at, &[&name, &digits(value)]);
         None
     }
 

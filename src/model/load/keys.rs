@@ -70,7 +70,6 @@ pub(super) const SPECIES: Table = Table {
         key("population", "the group it belongs to", "population: cod"),
         key("role", "fleet or resource", "role: fleet"),
         key("aim", "keep or remove", "aim: remove"),
-        NOTE,
     ],
 };
 
@@ -108,7 +107,6 @@ pub(super) const PROCESS: Table = Table {
     keys: &[
         needed("rate", "how fast it goes", "rate: r*N"),
         needed("effect", "what one unit of it does to each species", "effect: {N: 1}"),
-        NOTE,
     ],
 };
 
@@ -120,7 +118,6 @@ pub(super) const HARVEST: Table = Table {
         key("when", "before or after the step", "when: before"),
         key("price", "what one unit of each species is worth", "price: {N: 0.3}"),
         key("cost", "the cost per unit of time", "cost: c*E"),
-        NOTE,
     ],
 };
 
@@ -138,7 +135,6 @@ pub(super) const SURVEY: Table = Table {
     keys: &[
         needed("value", "the estimated abundance", "value: 610"),
         key("cv", "its coefficient of variation", "cv: 0.2"),
-        NOTE,
     ],
 };
 
@@ -147,7 +143,6 @@ pub(super) const CORRELATION: Table = Table {
     keys: &[
         needed("between", "the two parameters", "between: [r, K]"),
         needed("rank", "the rank correlation", "rank: -0.4"),
-        NOTE,
     ],
 };
 
@@ -158,7 +153,6 @@ pub(super) const SCENARIO: Table = Table {
         key("without", "the processes and harvests left out", "without: [trawl]"),
         key("harvest", "harvests added or replaced", "harvest: {quota: {takes: {S: Q}}}"),
         key("processes", "processes added or replaced", "processes: {stocking: {rate: 5, effect: {S: 1}}}"),
-        NOTE,
     ],
 };
 

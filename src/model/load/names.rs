@@ -5,16 +5,14 @@
 
 use std::collections::BTreeMap;
 
-use unicode_normalization::UnicodeNormalization;
-
 use super::desk::Desk;
 use crate::diag::nearest::nearest;
 use crate::diag::{Diagnostic, Location};
 use crate::expr::ast::{Builtin, Expr, ExprKind};
 use crate::expr::lex::is_identifier;
 use crate::expr::parse::parse;
-use crate::model::messages::Message;
-use crate::model::tree::{Entry, Kind, Node};
+use crate::model::messages::{Message, digits};
+use crate::model::tree::{Entry, Kind, Node, normal};
 use crate::model::yaml::Typed;
 use crate::model::{Formula, Name, ParameterId, SpeciesId, Term, follow};
 
@@ -43,11 +41,6 @@ pub(super) struct Written {
     pub(super) text: String,
     pub(super) at: Location,
     pub(super) origin: Vec<u32>,
-}
-
-/// The name as formulas read it.
-pub(super) fn normal(name: &str) -> String {
-    if name.is_ascii() { name.to_owned() } else { name.nfc().collect() }
 }
 
 /// A name of letters, digits and underscores that resembles the text.
@@ -251,7 +244,7 @@ fn bounds_reversed(formula: &Formula, call: &Expr, arguments: &[Expr]) -> Option
     let ExprKind::Call(builtin, _) = call.kind else { return None };
     (lo >= hi).then(|| {
         let at = formula.locate(low.span.to(high.span));
-        Message::BoundsReversed.at(at, &[&lo, &hi, &builtin.row().name])
+        Message::BoundsReversed.at(at, &[&digits(lo), &digits(hi), &builtin.row().name])
     })
 }
 

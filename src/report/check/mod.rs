@@ -61,7 +61,7 @@ fn unit_of(given: Option<&String>, inferred: Option<&Option<String>>) -> Option<
     given.map(|unit| (unit.clone(), false)).or(inferred)
 }
 
-/// How a parameter is drawn, in words; a range alone means uniform.
+/// How a parameter is drawn, in words; a range alone means uniform, but a control is set, not drawn.
 fn draw_of(model: &Model, id: ParameterId, parameter: &Parameter) -> Option<String> {
     use formula::number;
     let table = model.draws.as_ref().filter(|table| table.columns.contains(&id));
@@ -72,7 +72,7 @@ fn draw_of(model: &Model, id: ParameterId, parameter: &Parameter) -> Option<Stri
         (None, Some(Draw::Uniform)) => "uniform".to_owned(),
         (None, Some(Draw::Triangular)) => "triangular".to_owned(),
         (None, Some(Draw::Beta { a, b })) => format!("beta, {} and {}", number(a), number(b)),
-        (None, None) if parameter.range.is_some() => "uniform".to_owned(),
+        (None, None) if parameter.range.is_some() && !parameter.control => "uniform".to_owned(),
         (None, None) => return None,
     })
 }

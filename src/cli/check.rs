@@ -1,0 +1,95 @@
+//! `restpoint check`: reads a model and says what was understood.
+
+use std::path::Path;
+
+use serde_json::{Value, json};
+
+use crate::diag::render::position;
+use crate::diag::{Diagnostic, Sources};
+use crate::model::system::bounds::Bound;
+use crate::model::{Model, Species};
+//LINT use crate::model::lint::lint;
+use crate::model::system::System;
+use crate::model::units::check_units;
+use crate::report::check::{Style, Subject, Upper, json as report_json, text as report_text};
+
+use super::arguments::{Format, Options};
+use super::model::{Reading, read, remarks};
+use super::{Exit, Outcome};
+
+/// Reads the model at `path`, or the one compiled in, and says what was understood.
+pub(super) fn check(path: Option<&Path>, options: &Options, color: bool) -> Outcome {
+    match read(path) {
+        Reading::Unreadable(reason) => Outcome { result: String::new(), remarks: reason, exit: Exit::Fault },
+        Reading::Wrong(sources, found) => wrong(&found, &sources, options, color),
+        Reading::Model(model) => understood(&model, options, color),
+    }
+}
+
+/// A model that cannot be used: the messages for a reader, and for a program where one is asked for.
+fn wrong(found: &[Diagnostic], sources: &Sources, options: &Options, color: bool) -> Outcome {
+    let result = match options.format {
+        Format::Text => String::new(),
+        Format::Json => pretty(&json!({ "errors": errors(found, sources) })),
+    };
+    Outcome { result, remarks: remarks(found, sources, color), exit: Exit::Fault }
+}
+
+fn understood(model: &Model, options: &Options, color: bool) -> Outcome {
+    let mut system = match System::new(model, &[]) {
+        Ok(system) => system,
+        Err(found) => return wrong(&found, &model.sources, options, color),
+    };
+    let units = check_units(model);
+    let mut warnings = units.warnings.clone();
+    let (uppers, missing) = match system.bounds(model) {
+        Ok(bounds) => {
+            let sides: Vec<[f64; 2]> = bounds.iter().map(|bound| [bound.lower, bound.upper]).collect();
+            //LINT warnings.extend(lint(model, &system, &sides));
+            (bounds.iter().map(upper).collect::<Vec<Upper>>(), Vec::new())
+        }
+        Err(missing) => {
+            let given = |species: &Species| species.upper.map_or(Upper::Unknown, Upper::Given);
+            (model.species.iter().map(given).collect(), missing)
+        }
+    };
+    warnings.sort_by_key(|warning| warning.at);
+    let subject = Subject { model, units: &units, uppers: &uppers, warnings: &warnings };
+    let result = match options.format {
+        Format::Text => report_text(&subject, if options.ascii { Style::Ascii } else { Style::Unicode }),
+        Format::Json => pretty(&with_errors(report_json(&subject), &missing, &model.sources)),
+    };
+    let exit = if missing.is_empty() { Exit::Done } else { Exit::Fault };
+    Outcome { result, remarks: remarks(&missing, &model.sources, color), exit }
+}
+
+fn upper(bound: &Bound) -> Upper {
+    if bound.chosen { Upper::Chosen(bound.upper) } else { Upper::Given(bound.upper) }
+}
+
+fn with_errors(mut report: Value, found: &[Diagnostic], sources: &Sources) -> Value {
+    if let (Value::Object(report), false) = (&mut report, found.is_empty()) {
+        report.insert("errors".into(), errors(found, sources));
+    }
+    report
+}
+
+/// Each error as data: where it is, what is wrong, what was expected, what to do.
+fn errors(found: &[Diagnostic], sources: &Sources) -> Value {
+    let error = |diagnostic: &Diagnostic| {
+        let (file, line, column) = position(sources, diagnostic.at);
+        json!({
+            "file": file,
+            "line": line,
+            "column": column,
+            "message": diagnostic.message,
+            "expected": diagnostic.expected,
+            "help": diagnostic.help,
+        })
+    };
+    Value::Array(found.iter().map(error).collect())
+}
+
+fn pretty(value: &Value) -> String {
+    format!("{value:#}\n")
+}
