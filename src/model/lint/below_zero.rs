@@ -129,7 +129,7 @@ fn culprit<'p>(
         point[species.0] = Interval::ZERO;
         run.at(&point).defined && run.output(0).hi() < 0.0
     };
-    scene.points_for(&tape).iter().find(is_negative)?;
+    scene.points_for(&tape, scene.system.plans.len() * scene.model.species.len()).iter().find(is_negative)?;
     let values = run.outputs().skip(1);
     let by_takes = suspects.iter().zip(values).map(|(suspect, value)| (suspect, suspect.takes(value)));
     by_takes.max_by(|a, b| a.1.total_cmp(&b.1)).map(|(suspect, _)| suspect)

@@ -61,7 +61,7 @@ fn changes(scene: &Scene<'_>, plan: &Plan) -> Vec<Vec<f64>> {
     let tape = Tape::new(&graph, &rows);
     let mut run = tape.start(&plan.values);
     let mut changes = vec![Vec::new(); rows.len()];
-    for point in scene.points_for(&tape) {
+    for point in scene.points_for(&tape, scene.system.plans.len()) {
         if run.at(point).defined {
             changes.iter_mut().zip(run.outputs()).for_each(|(row, value)| row.push(*value));
         }
