@@ -105,7 +105,7 @@ fn warning(scene: &Scene<'_>, species: SpeciesId, suspect: &Suspect) -> Diagnost
     let (symbol, who) = (scene.symbol(species), &suspect.name);
     Diagnostic::warning(suspect.at, format!("{who} can drive {symbol} below zero"))
         .expected(format!("0 where {symbol} = 0"))
-        .help(format!("let it vanish with the stock, for example by the factor ramp({symbol}, 0, a small stock)"))
+        .help(format!("let it vanish with the stock, by a factor such as ramp({symbol}, 0, 10)"))
 }
 
 /// Who takes most at a point where the species is absent and its row is negative.

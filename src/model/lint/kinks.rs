@@ -95,9 +95,9 @@ fn warning(formula: &Formula, site: &Site<'_>, (a, b): &Level<'_>) -> Diagnostic
     let span = site.expr.span;
     let text = formula.text.get(span.start..span.end).unwrap_or(&formula.text);
     let (what, help) = if site.is_pole {
-        ("a pole", "rates grow without bound there; an absolute value or a half-saturation may be missing")
+        ("a pole", "rates grow without bound there; a half-saturation may be missing")
     } else {
-        ("a kink", "an equilibrium on the kink has no linearisation and is marked as such")
+        ("a kink", "an equilibrium on the kink has no linearisation")
     };
     let other = b.map_or_else(|| "0".to_owned(), ToString::to_string);
     let message = format!("\"{text}\" has {what} inside the search box, where {a} = {other}");

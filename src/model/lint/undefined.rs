@@ -51,7 +51,7 @@ fn warning(
     Some(
         Diagnostic::warning(formula.locate(piece.span), format!("\"{text}\" is not defined {place}"))
             .expected("a number everywhere in the search box")
-            .help("equilibria there have no linearisation; raise \"lower\" if they do not matter"),
+            .help("raise \"lower\" if no equilibrium there matters"),
     )
 }
 
