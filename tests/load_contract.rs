@@ -73,6 +73,18 @@ fn places_in_formulas_are_places_in_the_file() {
 }
 
 #[test]
+fn line_breaks_and_marks_of_other_systems_change_nothing() {
+    let plain = include_str!("files/contract_example.yaml");
+    let foreign = model(&format!("\u{feff}{}", plain.replace('\n', "\r\n")));
+    let rate = &foreign.processes[0].rate;
+    let at = rate.locate(restpoint::diag::Span::new(5, 12));
+    let text = &foreign.sources.get(at.source).expect("the model file").text;
+    assert_eq!(&text[at.span.start..at.span.end], "1 - S/K");
+    assert_eq!(foreign.base_values(), example().base_values());
+    assert_eq!(foreign.names, example().names);
+}
+
+#[test]
 fn scenarios_lie_over_the_base() {
     let model = example();
     let names = |scenario| model.harvests_under(scenario).iter().map(|h| h.name.as_str()).collect::<Vec<_>>();

@@ -81,6 +81,7 @@ messages! {
     DecimalComma: "{0} is not a number: \"{1}\"", "a number", "write the decimal point, not a comma: {2}";
     DigitGroups: "{0} is not a number: \"{1}\"", "a number", "write the digits without spaces or marks between them: {2}";
     LeadingZero: "{0} begins with a zero, which YAML takes for a text: \"{1}\"", "a number", "write {2}";
+    NumberWithUnit: "{0} is not a number alone: \"{1}\"", "a number", "write the number alone; a parameter's unit has a key of its own: {2}";
     Percent: "{0} is not a number: \"{1}\"", "a number", "write the share itself, 5% as 0.05";
     NumberTooLarge: "{0} is too large to be held: \"{1}\"", "a number below 1.8e308", "write it in a larger unit";
     NotFinite: "{0} is not finite: \"{1}\"", "a finite number", "write a number; leave the key out where there is no limit";

@@ -7,7 +7,7 @@ use std::collections::BTreeMap;
 
 use super::desk::Desk;
 use crate::diag::nearest::nearest;
-use crate::diag::{Diagnostic, Location};
+use crate::diag::{Diagnostic, Location, Span};
 use crate::expr::ast::{Builtin, Expr, ExprKind};
 use crate::expr::lex::is_identifier;
 use crate::expr::parse::parse;
@@ -106,7 +106,7 @@ impl Names {
         match self.get(symbol) {
             Some(Name::Species(id)) => return Some(id),
             Some(other) => desk.say(Message::NotASpecies, at, &[&symbol, &Self::describe(other), &symbols]),
-            None if self.incomplete => desk.unsure(),
+            None if self.incomplete || self.symbols.is_empty() => desk.unsure(),
             None => {
                 let near = desk.nearest(symbol, self.symbols.iter().map(String::as_str));
                 match (self.long.get(symbol), near) {
@@ -192,6 +192,9 @@ impl Names {
             }
             _ => {}
         });
+        if !found.is_empty() && !unsure {
+            found.extend(self.hidden_time(&formula, &seen));
+        }
         if unsure {
             desk.unsure();
         }
@@ -200,6 +203,15 @@ impl Names {
             desk.report(diagnostic);
         }
         sound.then_some(formula)
+    }
+
+    /// The time in a part of the formula that could not be read, most often as `sin(2*pi*t)`.
+    fn hidden_time(&self, formula: &Formula, seen: &[&str]) -> Option<Diagnostic> {
+        let mut unknown =
+            ["t", "time"].into_iter().filter(|word| !seen.contains(word) && !self.declared.contains_key(*word));
+        let (start, word) = unknown.find_map(|word| Some((whole_word(&formula.text, word)?, word)))?;
+        let at = formula.locate(Span::new(start, start + word.len()));
+        Some(Message::TimeInFormula.at(at, &[&word]))
     }
 
     /// What is wrong with the use of a name. In a hurry, where it is to be counted only, the cause is not looked for.
@@ -235,6 +247,13 @@ impl Names {
             None => Message::UnknownName.at(at, &[&name]),
         }
     }
+}
+
+/// Where a word stands by itself.
+fn whole_word(text: &str, word: &str) -> Option<usize> {
+    let joins = |c: char| c.is_ascii_digit() || is_identifier(c.encode_utf8(&mut [0; 4]));
+    let mut places = text.match_indices(word).map(|(start, _)| start);
+    places.find(|&start| !text[..start].ends_with(joins) && !text[start + word.len()..].starts_with(joins))
 }
 
 /// Bounds that are plain numbers and in the wrong order; those of other kinds are for the lint to weigh.

@@ -38,8 +38,9 @@ pub(super) fn declared(desk: &mut Desk<'_>, fields: &Fields<'_>, names: &mut Nam
 fn one(desk: &mut Desk<'_>, entry: &Entry, names: &mut Names) -> Species {
     let what = format!("the species \"{}\"", entry.key);
     let Some(fields) = desk.fields(&entry.value, &SPECIES, &what, entry.key_at) else {
-        names.declare_species(desk, &entry.key, &as_symbol(&entry.key), entry.key_at);
-        return bare(&entry.key, as_symbol(&entry.key), entry.key_at, None);
+        let symbol = meant(entry);
+        names.declare_species(desk, &entry.key, &symbol, entry.key_at);
+        return bare(&entry.key, symbol, entry.key_at, None);
     };
     let symbol = symbol(desk, &fields, entry);
     names.declare_species(desk, &entry.key, &symbol.value, symbol.at);
@@ -58,6 +59,14 @@ fn one(desk: &mut Desk<'_>, entry: &Entry, names: &mut Names) -> Species {
         species.aim = desk.word(node, "\"aim\"", AIMS).map_or(Aim::default(), |index| aims[index]);
     }
     species
+}
+
+/// The symbol that was probably meant where the entry is no map: a single word is one.
+fn meant(entry: &Entry) -> String {
+    match &entry.value.kind {
+        Kind::Scalar(scalar) if is_identifier(&scalar.value) => normal(&scalar.value),
+        _ => as_symbol(&entry.key),
+    }
 }
 
 /// A species of which nothing but its names and the search box is known.
