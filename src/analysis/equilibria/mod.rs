@@ -110,6 +110,8 @@ pub fn find(graph: &mut Graph, problem: &Problem<'_>, budget: &Budget<'_>) -> Eq
     let n = graph.states();
     assert!(problem.rows.len() == n && problem.sides.len() == n, "one row and two sides for each of {n} species");
     let reaches_zero = problem.sides.iter().map(|side| side[0] <= 0.0).collect();
+    let rows = graph.with_zeros(problem.rows, problem.values);
+    let problem = &Problem { rows: &rows, ..*problem };
     let mut faces = Faces::new(graph, problem.rows, reaches_zero);
     let mut whole = Whole { candidates: Vec::new(), open: Vec::new(), boxes: 0, faces: 0, none_above: true };
     while let Some(face) = faces.next(graph) {
