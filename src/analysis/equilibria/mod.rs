@@ -11,8 +11,11 @@ mod newton;
 mod remains;
 mod search;
 
+use std::sync::OnceLock;
+
 use crate::expr::graph::{Graph, NodeId};
 use crate::expr::tape::Tape;
+use crate::model::TimeKind;
 use crate::num::interval::Interval;
 use faces::{Face, Faces};
 use newton::Region;
@@ -60,13 +63,40 @@ impl Equilibrium {
     }
 }
 
-/// How much work a search may take.
+/// Does several jobs, perhaps at once.
+pub trait Workers: Sync {
+    /// How many jobs may run at once.
+    fn count(&self) -> usize;
+
+    /// Runs job 0, 1, … up to `jobs`, each once, and returns when all are done.
+    fn run(&self, jobs: usize, job: &(dyn Fn(usize) + Sync));
+}
+
+/// One job after another.
+pub struct OneByOne;
+
+impl Workers for OneByOne {
+    fn count(&self) -> usize {
+        1
+    }
+
+    fn run(&self, jobs: usize, job: &(dyn Fn(usize) + Sync)) {
+        (0..jobs).for_each(job);
+    }
+}
+
+/// How much work a search may take, and who does it.
 pub struct Budget<'b> {
     /// Boxes on each face.
     pub boxes: usize,
     /// Asked often; the search ends soon after it says so.
     pub stop: &'b (dyn Fn() -> bool + Sync),
+    /// Who searches the faces.
+    pub workers: &'b dyn Workers,
 }
+
+/// Walks into which the faces are divided, for each worker: faces differ, and a worker that is done takes the next.
+const WALKS_A_WORKER: usize = 8;
 
 /// The equations to be solved: rates of change, or for a map what it adds to the state.
 pub struct Problem<'p> {
@@ -76,6 +106,20 @@ pub struct Problem<'p> {
     pub values: &'p [f64],
     /// The search box: lower and upper side, one pair a species.
     pub sides: &'p [[f64; 2]],
+}
+
+/// The rows that are 0 at an equilibrium: rates of change as they are, a map less the state itself.
+pub fn balance(graph: &mut Graph, rows: &[NodeId], time: &TimeKind) -> Vec<NodeId> {
+    match time {
+        TimeKind::Continuous => rows.to_vec(),
+        TimeKind::Discrete { .. } => {
+            let stays = |(i, &row): (usize, &NodeId)| {
+                let x = graph.state(i);
+                graph.sub(row, x)
+            };
+            rows.iter().enumerate().map(stays).collect()
+        }
+    }
 }
 
 /// What is known of the equilibria in the box.
@@ -112,13 +156,25 @@ pub fn find(graph: &mut Graph, problem: &Problem<'_>, budget: &Budget<'_>) -> Eq
     let reaches_zero = problem.sides.iter().map(|side| side[0] <= 0.0).collect();
     let rows = graph.with_zeros(problem.rows, problem.values);
     let problem = &Problem { rows: &rows, ..*problem };
-    let mut faces = Faces::new(graph, problem.rows, reaches_zero);
-    let mut whole = Whole { candidates: Vec::new(), open: Vec::new(), boxes: 0, faces: 0, none_above: true };
-    while let Some(face) = faces.next(graph) {
-        whole.faces += 1;
-        whole.look_at(graph, &face, problem, budget);
-    }
+    let faces = Faces::new(graph, problem.rows, reaches_zero);
+    let whole = match budget.workers.count() {
+        // Two species have four faces: not worth another thread.
+        0 | 1 => Whole::of(faces, graph, problem, budget),
+        _ if n <= 2 => Whole::of(faces, graph, problem, budget),
+        workers => at_once(&faces.divide(graph, WALKS_A_WORKER * workers), graph, problem, budget),
+    };
     whole.finish(graph, problem)
+}
+
+/// Walks at once, each with a graph of its own; what they find is put together in the order of the walks.
+fn at_once(walks: &[Faces], graph: &Graph, problem: &Problem<'_>, budget: &Budget<'_>) -> Whole {
+    let found: Vec<OnceLock<Whole>> = walks.iter().map(|_| OnceLock::new()).collect();
+    budget.workers.run(walks.len(), &|job| {
+        let whole = Whole::of(walks[job].clone(), &mut graph.clone(), problem, budget);
+        // Each job runs once, so its place is free.
+        let _ = found[job].set(whole);
+    });
+    found.into_iter().filter_map(OnceLock::into_inner).fold(Whole::new(), Whole::and)
 }
 
 /// What was found on the faces so far.
@@ -132,6 +188,35 @@ struct Whole {
 }
 
 impl Whole {
+    fn new() -> Self {
+        Self { candidates: Vec::new(), open: Vec::new(), boxes: 0, faces: 0, none_above: true }
+    }
+
+    /// Everything on the faces of a walk.
+    fn of(mut faces: Faces, graph: &mut Graph, problem: &Problem<'_>, budget: &Budget<'_>) -> Self {
+        let mut whole = Self::new();
+        while let Some(face) = faces.next(graph) {
+            if (budget.stop)() {
+                // Whatever the walk had still to see may be anywhere in the box.
+                let whole_box = problem.sides.iter().map(|side| Interval::new(side[0], side[1])).collect();
+                whole.open.push((whole_box, true));
+                break;
+            }
+            whole.faces += 1;
+            whole.look_at(graph, &face, problem, budget);
+        }
+        whole
+    }
+
+    fn and(mut self, other: Self) -> Self {
+        self.candidates.extend(other.candidates);
+        self.open.extend(other.open);
+        self.boxes += other.boxes;
+        self.faces += other.faces;
+        self.none_above &= other.none_above;
+        self
+    }
+
     fn look_at(&mut self, graph: &mut Graph, face: &Face, problem: &Problem<'_>, budget: &Budget<'_>) {
         let n = graph.states();
         let tape = Tape::over(graph, &face.rows, &face.variables);
