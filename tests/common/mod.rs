@@ -4,6 +4,7 @@
 
 pub mod cases;
 pub mod families;
+pub mod newton;
 pub mod text;
 
 use restpoint::expr::graph::{Graph, NodeId};
