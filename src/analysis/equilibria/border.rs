@@ -3,7 +3,7 @@
 
 use super::faces::Face;
 use super::newton::{Equations, Proved, Region};
-use super::{Candidate, Derivative, Equilibrium, Problem, everywhere};
+use super::{Candidate, Derivative, Equilibrium, Probably, Problem, Unresolved, everywhere};
 use crate::expr::graph::divide::AtZero;
 use crate::expr::graph::{Graph, NodeId};
 use crate::expr::tape::Tape;
@@ -14,7 +14,7 @@ pub(super) enum Settled {
     /// An equilibrium.
     Root(Candidate),
     /// A root that may or may not lie in the orthant.
-    Open(Region),
+    Open(Unresolved),
 }
 
 /// Takes a face's root for an equilibrium, unless it is outside the box; `None` where it is.
@@ -34,7 +34,12 @@ pub(super) fn settle(graph: &mut Graph, face: &Face, root: &Proved, problem: &Pr
     }
     match exact_zeros(graph, face, root, &near_zero, problem) {
         Some(proved) => Some(Settled::Root(proved)),
-        None => Some(Settled::Open(enclosure)),
+        None => Some(Settled::Open(Unresolved {
+            region: enclosure,
+            probably: Probably::DoubleRoot,
+            text: "an equilibrium on the border, or one beside it, or both: they are too close to be told apart".into(),
+            witnesses: Vec::new(),
+        })),
     }
 }
 

@@ -6,16 +6,23 @@
 
 mod above;
 mod border;
+mod bordered;
+mod cluster;
 mod faces;
 mod newton;
 mod remains;
 mod search;
+mod witness;
+
+use std::sync::OnceLock;
 
 use crate::expr::graph::{Graph, NodeId};
 use crate::expr::tape::Tape;
+use crate::model::TimeKind;
 use crate::num::interval::Interval;
 use faces::{Face, Faces};
 use newton::Region;
+use remains::Remains;
 use search::{Limits, Search};
 
 pub use remains::{Probably, Unresolved};
@@ -60,13 +67,40 @@ impl Equilibrium {
     }
 }
 
-/// How much work a search may take.
+/// Does several jobs, perhaps at once.
+pub trait Workers: Sync {
+    /// How many jobs may run at once.
+    fn count(&self) -> usize;
+
+    /// Runs job 0, 1, … up to `jobs`, each once, and returns when all are done.
+    fn run(&self, jobs: usize, job: &(dyn Fn(usize) + Sync));
+}
+
+/// One job after another.
+pub struct OneByOne;
+
+impl Workers for OneByOne {
+    fn count(&self) -> usize {
+        1
+    }
+
+    fn run(&self, jobs: usize, job: &(dyn Fn(usize) + Sync)) {
+        (0..jobs).for_each(job);
+    }
+}
+
+/// How much work a search may take, and who does it.
 pub struct Budget<'b> {
     /// Boxes on each face.
     pub boxes: usize,
     /// Asked often; the search ends soon after it says so.
     pub stop: &'b (dyn Fn() -> bool + Sync),
+    /// Who searches the faces.
+    pub workers: &'b dyn Workers,
 }
+
+/// Walks into which the faces are divided, for each worker: faces differ, and a worker that is done takes the next.
+const WALKS_A_WORKER: usize = 8;
 
 /// The equations to be solved: rates of change, or for a map what it adds to the state.
 pub struct Problem<'p> {
@@ -76,6 +110,20 @@ pub struct Problem<'p> {
     pub values: &'p [f64],
     /// The search box: lower and upper side, one pair a species.
     pub sides: &'p [[f64; 2]],
+}
+
+/// The rows that are 0 at an equilibrium: rates of change as they are, a map less the state itself.
+pub fn balance(graph: &mut Graph, rows: &[NodeId], time: &TimeKind) -> Vec<NodeId> {
+    match time {
+        TimeKind::Continuous => rows.to_vec(),
+        TimeKind::Discrete { .. } => {
+            let stays = |(i, &row): (usize, &NodeId)| {
+                let x = graph.state(i);
+                graph.sub(row, x)
+            };
+            rows.iter().enumerate().map(stays).collect()
+        }
+    }
 }
 
 /// What is known of the equilibria in the box.
@@ -112,26 +160,72 @@ pub fn find(graph: &mut Graph, problem: &Problem<'_>, budget: &Budget<'_>) -> Eq
     let reaches_zero = problem.sides.iter().map(|side| side[0] <= 0.0).collect();
     let rows = graph.with_zeros(problem.rows, problem.values);
     let problem = &Problem { rows: &rows, ..*problem };
-    let mut faces = Faces::new(graph, problem.rows, reaches_zero);
-    let mut whole = Whole { candidates: Vec::new(), open: Vec::new(), boxes: 0, faces: 0, none_above: true };
-    while let Some(face) = faces.next(graph) {
-        whole.faces += 1;
-        whole.look_at(graph, &face, problem, budget);
-    }
+    let faces = Faces::new(graph, problem.rows, reaches_zero);
+    let whole = match budget.workers.count() {
+        // Two species have four faces: not worth another thread.
+        0 | 1 => Whole::of(faces, graph, problem, budget),
+        _ if n <= 2 => Whole::of(faces, graph, problem, budget),
+        workers => at_once(&faces.divide(graph, WALKS_A_WORKER * workers), graph, problem, budget),
+    };
     whole.finish(graph, problem)
+}
+
+/// Walks at once, each with a graph of its own; what they find is put together in the order of the walks.
+fn at_once(walks: &[Faces], graph: &Graph, problem: &Problem<'_>, budget: &Budget<'_>) -> Whole {
+    let found: Vec<OnceLock<Whole>> = walks.iter().map(|_| OnceLock::new()).collect();
+    budget.workers.run(walks.len(), &|job| {
+        let whole = Whole::of(walks[job].clone(), &mut graph.clone(), problem, budget);
+        // Each job runs once, so its place is free.
+        let _ = found[job].set(whole);
+    });
+    found.into_iter().filter_map(OnceLock::into_inner).fold(Whole::new(), Whole::and)
 }
 
 /// What was found on the faces so far.
 struct Whole {
     candidates: Vec<Candidate>,
-    /// Open boxes by species, and whether the budget left them open.
-    open: Vec<(Region, bool)>,
+    unresolved: Vec<Unresolved>,
     boxes: usize,
     faces: usize,
     none_above: bool,
 }
 
 impl Whole {
+    fn new() -> Self {
+        Self { candidates: Vec::new(), unresolved: Vec::new(), boxes: 0, faces: 0, none_above: true }
+    }
+
+    /// Everything on the faces of a walk.
+    fn of(mut faces: Faces, graph: &mut Graph, problem: &Problem<'_>, budget: &Budget<'_>) -> Self {
+        let mut whole = Self::new();
+        while let Some(face) = faces.next(graph) {
+            if (budget.stop)() {
+                // Whatever the walk had still to see may be anywhere in the box.
+                let whole_box = problem.sides.iter().map(|side| Interval::new(side[0], side[1])).collect();
+                let text = "the budget ended before every face was looked at".to_owned();
+                whole.unresolved.push(Unresolved {
+                    region: whole_box,
+                    probably: Probably::Budget,
+                    text,
+                    witnesses: Vec::new(),
+                });
+                break;
+            }
+            whole.faces += 1;
+            whole.look_at(graph, &face, problem, budget);
+        }
+        whole
+    }
+
+    fn and(mut self, other: Self) -> Self {
+        self.candidates.extend(other.candidates);
+        self.unresolved.extend(other.unresolved);
+        self.boxes += other.boxes;
+        self.faces += other.faces;
+        self.none_above &= other.none_above;
+        self
+    }
+
     fn look_at(&mut self, graph: &mut Graph, face: &Face, problem: &Problem<'_>, budget: &Budget<'_>) {
         let n = graph.states();
         let tape = Tape::over(graph, &face.rows, &face.variables);
@@ -141,16 +235,18 @@ impl Whole {
         let found = Search::run(&tape, problem.values, region.clone(), &limits);
         self.boxes += found.boxes;
         self.none_above = self.none_above && above::is_empty(&tape, problem.values, &region);
-        for root in found.roots {
-            if let Some(settled) = border::settle(graph, face, &root, problem) {
-                match settled {
-                    border::Settled::Root(candidate) => self.candidates.push(candidate),
-                    border::Settled::Open(region) => self.open.push((region, false)),
-                }
+        let remains = if found.open.is_empty() && found.continuum.is_empty() {
+            Remains::default()
+        } else {
+            remains::look_again(&tape, problem.values, face, n, &found)
+        };
+        self.unresolved.extend(remains.unresolved);
+        for root in found.roots.iter().chain(&remains.roots) {
+            match border::settle(graph, face, root, problem) {
+                Some(border::Settled::Root(candidate)) => self.candidates.push(candidate),
+                Some(border::Settled::Open(unresolved)) => self.unresolved.push(unresolved),
+                None => {}
             }
-        }
-        for region in found.open {
-            self.open.push((everywhere(&region, face, n), found.stopped));
         }
     }
 
@@ -160,7 +256,7 @@ impl Whole {
         for candidate in &mut self.candidates {
             border::look_at_derivative(&tape, problem.values, &mut candidate.equilibrium);
         }
-        let unresolved = remains::explain(&tape, problem, &self.candidates, self.open);
+        let unresolved = self.unresolved;
         let mut list: Vec<Equilibrium> = self.candidates.into_iter().map(|candidate| candidate.equilibrium).collect();
         list.sort_by(order);
         let complete = unresolved.is_empty();

@@ -42,10 +42,12 @@ pub(super) struct Proved {
 }
 
 /// Values and derivatives over a region.
-struct Linear {
-    values: Vec<Interval>,
-    slopes: Vec<Interval>,
-    domain: Domain,
+pub(super) struct Linear {
+    /// One a row.
+    pub(super) values: Vec<Interval>,
+    /// Row by row.
+    pub(super) slopes: Vec<Interval>,
+    pub(super) domain: Domain,
 }
 
 impl<'t> Equations<'t> {
@@ -59,7 +61,8 @@ impl<'t> Equations<'t> {
         }
     }
 
-    fn linear(&mut self, region: &[Interval]) -> Linear {
+    /// Values and derivatives over a region.
+    pub(super) fn linear(&mut self, region: &[Interval]) -> Linear {
         let domain = self.intervals.at(region);
         let n = self.n;
         let values = (0..n).map(|i| *self.intervals.output(i)).collect();
@@ -73,7 +76,8 @@ impl<'t> Equations<'t> {
         Linear { values, slopes, domain }
     }
 
-    fn slopes_at(&mut self, point: &[f64]) -> Vec<f64> {
+    /// The Jacobian at a point, row by row; the values are then there too.
+    pub(super) fn slopes_at(&mut self, point: &[f64]) -> Vec<f64> {
         self.numbers.at(point);
         let n = self.n;
         let mut slopes = Vec::with_capacity(n * n);
@@ -84,6 +88,11 @@ impl<'t> Equations<'t> {
             }
         }
         slopes
+    }
+
+    /// The values at the point last evaluated.
+    pub(super) fn values(&self) -> Vec<f64> {
+        (0..self.n).map(|i| *self.numbers.output(i)).collect()
     }
 
     /// An approximate root by Newton's method from `start`; with a leash, only where the iterates stay near that region.
