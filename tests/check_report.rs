@@ -6,9 +6,10 @@ use draft::Draft;
 use restpoint::diag::Location;
 use restpoint::expr::ast::{BinaryOp, Builtin, Expr, ExprKind};
 use restpoint::expr::parse::parse;
+use restpoint::model::system::bounds::Bound;
 use restpoint::model::units::check_units;
 use restpoint::model::{Aim, Correlation, Draw, Model, ParameterId, Placed, Role, SpeciesId, Survey, When};
-use restpoint::report::check::{Style, Subject, Upper, json, text};
+use restpoint::report::check::{Style, Subject, json, text};
 use serde_json::json;
 
 fn placed<T>(value: T) -> Placed<T> {
@@ -54,8 +55,9 @@ fn two_stocks() -> Model {
 
 fn shown(model: &Model, style: Style) -> String {
     let units = check_units(model);
-    let uppers = [Upper::Given(1500.0), Upper::Chosen(400.0)];
-    text(&Subject { model, units: &units, uppers: &uppers, warnings: &units.warnings }, style)
+    let bound = |upper, chosen| Bound { lower: 0.0, upper, chosen };
+    let bounds = [bound(1500.0, false), bound(400.0, true)];
+    text(&Subject { model, units: &units, bounds: Some(&bounds), warnings: &units.warnings }, style)
 }
 
 /// The equations alone, line by line.
@@ -157,7 +159,7 @@ fn both_forms_of_an_equation_have_the_value_of_what_was_written() {
         let (model, _) =
             Draft::new("yr", &stocks, &parameters).process(rate, &[("S", "-h")]).change(&[("S", "r*S")]).finish();
         let units = check_units(&model);
-        let data = json(&Subject { model: &model, units: &units, uppers: &[], warnings: &[] });
+        let data = json(&Subject { model: &model, units: &units, bounds: None, warnings: &[] });
         let read = |key: &str| value(&parse(data["equations"][0][key].as_str().unwrap_or("0/0")).0);
         let expected = -1.7 * value(&parse(rate).0) + 0.7 * 3.0;
         for found in [read("right"), 3.0 * read("per_capita")] {
@@ -202,7 +204,8 @@ fn a_large_community_is_told_in_one_line() {
 fn data_holds_what_the_text_holds() {
     let model = two_stocks();
     let units = check_units(&model);
-    let subject = Subject { model: &model, units: &units, uppers: &[Upper::Given(1500.0)], warnings: &units.warnings };
+    let bounds = [Bound { lower: 0.0, upper: 1500.0, chosen: true }];
+    let subject = Subject { model: &model, units: &units, bounds: Some(&bounds), warnings: &units.warnings };
     let data = json(&subject);
     let check =
         |pointer: &str, expected: serde_json::Value| assert_eq!(data.pointer(pointer), Some(&expected), "{pointer}");
@@ -212,7 +215,8 @@ fn data_holds_what_the_text_holds() {
     check("/shorthand/0", json!({"name": "intake", "formula": "a*S/(1 + a*h*S)", "unit": "1/yr"}));
     check("/species/0/box", json!([0.0, 1500.0]));
     check("/species/1/box", json!([0.0, null]));
-    check("/species/1/upper", json!("unknown"));
+    check("/species/0/chosen", json!(true));
+    check("/species/1/chosen", json!(false));
     check("/parameters/0/unit", json!("1/yr"));
     check("/parameters/0/unit_inferred", json!(true));
     check("/parameters/1/draw", json!("uniform"));

@@ -73,6 +73,18 @@ fn places_in_formulas_are_places_in_the_file() {
 }
 
 #[test]
+fn line_breaks_and_marks_of_other_systems_change_nothing() {
+    let plain = include_str!("files/contract_example.yaml");
+    let foreign = model(&format!("\u{feff}{}", plain.replace('\n', "\r\n")));
+    let rate = &foreign.processes[0].rate;
+    let at = rate.locate(restpoint::diag::Span::new(5, 12));
+    let text = &foreign.sources.get(at.source).expect("the model file").text;
+    assert_eq!(&text[at.span.start..at.span.end], "1 - S/K");
+    assert_eq!(foreign.base_values(), example().base_values());
+    assert_eq!(foreign.names, example().names);
+}
+
+#[test]
 fn scenarios_lie_over_the_base() {
     let model = example();
     let names = |scenario| model.harvests_under(scenario).iter().map(|h| h.name.as_str()).collect::<Vec<_>>();
@@ -111,7 +123,7 @@ fn a_discrete_model_with_every_word() {
     let model = model(
         "title: T\ntime: {unit: month, step: 0.5}\n\
          species:\n  young hare: {symbol: η, population: hare, lower: 1, upper: 9, unit: ind/km2}\n\
-         \x20 adult hare: {symbol: A, population: hare, aim: remove, note: a pest}\n  fleet: {role: fleet}\n  grass: {role: resource}\n\
+         \x20 adult hare: {symbol: A, population: hare, aim: remove}\n  fleet: {role: fleet}\n  grass: {role: resource}\n\
          shorthand: {later: earlier + 1, earlier: 2*A}\n\
          next: {η: later, A: '0.5*A +\n    η', fleet: fleet, grass: grass}\n\
          harvest: {hunt: {when: before, takes: {A: 0.1*A}, price: {A: 2}, cost: 1}, seen: {counts: {η: η}}}\n",

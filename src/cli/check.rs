@@ -6,12 +6,11 @@ use serde_json::{Value, json};
 
 use crate::diag::render::position;
 use crate::diag::{Diagnostic, Sources};
-use crate::model::system::bounds::Bound;
-use crate::model::{Model, Species};
-//LINT use crate::model::lint::lint;
+use crate::model::Model;
+use crate::model::lint::lint;
 use crate::model::system::System;
 use crate::model::units::check_units;
-use crate::report::check::{Style, Subject, Upper, json as report_json, text as report_text};
+use crate::report::check::{Style, Subject, json as report_json, text as report_text};
 
 use super::arguments::{Format, Options};
 use super::model::{Reading, read, remarks};
@@ -42,29 +41,21 @@ fn understood(model: &Model, options: &Options, color: bool) -> Outcome {
     };
     let units = check_units(model);
     let mut warnings = units.warnings.clone();
-    let (uppers, missing) = match system.bounds(model) {
+    let (bounds, missing) = match system.bounds(model) {
         Ok(bounds) => {
-            let sides: Vec<[f64; 2]> = bounds.iter().map(|bound| [bound.lower, bound.upper]).collect();
-            //LINT warnings.extend(lint(model, &system, &sides));
-            (bounds.iter().map(upper).collect::<Vec<Upper>>(), Vec::new())
+            warnings.extend(lint(model, &system, &bounds));
+            (Some(bounds), Vec::new())
         }
-        Err(missing) => {
-            let given = |species: &Species| species.upper.map_or(Upper::Unknown, Upper::Given);
-            (model.species.iter().map(given).collect(), missing)
-        }
+        Err(missing) => (None, missing),
     };
     warnings.sort_by_key(|warning| warning.at);
-    let subject = Subject { model, units: &units, uppers: &uppers, warnings: &warnings };
+    let subject = Subject { model, units: &units, bounds: bounds.as_deref(), warnings: &warnings };
     let result = match options.format {
         Format::Text => report_text(&subject, if options.ascii { Style::Ascii } else { Style::Unicode }),
         Format::Json => pretty(&with_errors(report_json(&subject), &missing, &model.sources)),
     };
     let exit = if missing.is_empty() { Exit::Done } else { Exit::Fault };
     Outcome { result, remarks: remarks(&missing, &model.sources, color), exit }
-}
-
-fn upper(bound: &Bound) -> Upper {
-    if bound.chosen { Upper::Chosen(bound.upper) } else { Upper::Given(bound.upper) }
 }
 
 fn with_errors(mut report: Value, found: &[Diagnostic], sources: &Sources) -> Value {

@@ -13,6 +13,9 @@ use crate::diag::{Diagnostic, Location};
 /// Characters of a value from the file that a message repeats.
 const VALUE_LIMIT: usize = 200;
 
+/// Digits of a number that are written without an exponent.
+const DIGITS: usize = 20;
+
 macro_rules! messages {
     ($($name:ident: $what:literal, $expected:literal, $help:literal;)*) => {
         /// One thing that can be wrong.
@@ -78,6 +81,7 @@ messages! {
     DecimalComma: "{0} is not a number: \"{1}\"", "a number", "write the decimal point, not a comma: {2}";
     DigitGroups: "{0} is not a number: \"{1}\"", "a number", "write the digits without spaces or marks between them: {2}";
     LeadingZero: "{0} begins with a zero, which YAML takes for a text: \"{1}\"", "a number", "write {2}";
+    NumberWithUnit: "{0} is not a number alone: \"{1}\"", "a number", "write the number alone; a parameter's unit has a key of its own: {2}";
     Percent: "{0} is not a number: \"{1}\"", "a number", "write the share itself, 5% as 0.05";
     NumberTooLarge: "{0} is too large to be held: \"{1}\"", "a number below 1.8e308", "write it in a larger unit";
     NotFinite: "{0} is not finite: \"{1}\"", "a finite number", "write a number; leave the key out where there is no limit";
@@ -176,6 +180,12 @@ impl Message {
         let [what, expected, help] = self.row().map(|template| fill(template, values));
         Diagnostic::error(at, what).expected(expected).help(help)
     }
+}
+
+/// A number for a message: with an exponent where it has more digits than anyone reads.
+pub(super) fn digits(value: f64) -> String {
+    let plain = value.to_string();
+    if plain.len() <= DIGITS { plain } else { format!("{value:e}") }
 }
 
 fn fill(template: &str, values: &[&dyn Display]) -> String {

@@ -2,11 +2,16 @@
 //!
 //! A [`Model`] that exists is sound: `load` makes one or says everything that is wrong. It holds formulas as syntax
 //! trees with their places; `system` assembles them into rows of the graph. A [`Scenario`] is a small overlay on a model,
-//! never a second model.
+//! never a second model; `overlay` looks through it.
+//!
+//! From the bottom up: `events` (YAML's parser), `tree` (nodes with places, within limits), `yaml` (types of values),
+//! `follow` (from a value back to its bytes), `slips` and `messages` (what is said), `findings` (what was said), `load`
+//! (a module for each section).
 
 mod events;
 mod findings;
 mod follow;
+pub mod lint;
 pub mod load;
 mod messages;
 mod overlay;

@@ -52,6 +52,11 @@ pub(super) fn explain(text: &str, source: SourceId, fault: &Fault) -> Diagnostic
         None => Message::YamlOther.at(here, &[&fault.problem]),
         // A tab that indents is met as a character that begins nothing.
         Some((_, Message::YamlStart, _)) if word == "\t" => Message::YamlTab.at(here, &[]),
+        Some((_, Message::YamlColon, _)) if !text[line.start..fault.at.clamp(line.start, line.end)].contains(": ") => {
+            let before = line_at(text, text[..line.start].trim_end().len().saturating_sub(1));
+            let start = before.end - text[before.start..before.end].trim_start().len();
+            Message::YamlKeyColon.at(Location { source, span: Span::new(start, before.end) }, &[])
+        }
         Some((_, Message::YamlColon, _)) => Message::YamlColon.at(here, &[&value_of(&text[line.start..line.end])]),
         Some((_, message @ Message::YamlIndent, _)) => {
             message.at(here, &[]).related(place(fault.began), "the map begins here")
@@ -72,28 +77,26 @@ pub(super) fn stands_alone(text: &str, key: &Node, value: &Node) -> bool {
     value.value.is_empty() && value.style == Style::Plain && !after.starts_with(':')
 }
 
-/// The diagnostic for a key that stands alone: the second half of a formula or number, or simply without a value.
-pub(super) fn split(text: &str, previous: Option<&Entry>, key: &Node, word: &str) -> Diagnostic {
-    let before = previous.and_then(|entry| match &entry.value.kind {
-        Kind::Scalar(scalar) if scalar.style == Style::Plain => Some((entry.value.at.span, scalar.value.as_str())),
-        _ => None,
-    });
-    let Some((span, before)) = before else {
-        return Message::KeyAlone.at(key.at, &[&word]);
+/// The diagnostic for a key that is the second half of the formula or number before it; `None` where it is not.
+pub(super) fn split(text: &str, previous: Option<&Entry>, key: &Node, word: &str) -> Option<Diagnostic> {
+    let value = &previous?.value;
+    let (span, before) = match &value.kind {
+        Kind::Scalar(scalar) if scalar.style == Style::Plain => (value.at.span, scalar.value.as_str()),
+        _ => return None,
     };
     let place = |span| Location { source: key.at.source, span };
     let whole = Span::new(span.start, key.at.span.end);
     let joined = text.get(whole.start..whole.end).unwrap_or_default();
     let digits = is_digits(before.trim_start_matches(['+', '-'])) && word.starts_with(|c: char| c.is_ascii_digit());
     if digits && !joined.contains(char::is_whitespace) {
-        return Message::SplitNumber.at(place(whole), &[&joined, &format!("{before}.{word}")]);
+        return Some(Message::SplitNumber.at(place(whole), &[&joined, &format!("{before}.{word}")]));
     }
-    if before.matches('(').count() > before.matches(')').count() {
-        let formula = balanced(text.get(span.start..).unwrap_or_default());
-        let whole = Span::new(span.start, span.start + formula.len());
-        return Message::SplitFormula.at(place(whole), &[&formula]);
+    if before.matches('(').count() <= before.matches(')').count() {
+        return None;
     }
-    Message::KeyAlone.at(key.at, &[&word])
+    let formula = balanced(text.get(span.start..).unwrap_or_default());
+    let whole = Span::new(span.start, span.start + formula.len());
+    Some(Message::SplitFormula.at(place(whole), &[&formula]))
 }
 
 fn is_digits(text: &str) -> bool {

@@ -7,6 +7,8 @@
 use std::collections::HashMap;
 use std::rc::Rc;
 
+use unicode_normalization::UnicodeNormalization;
+
 use super::events::{Event, Events, Style, What};
 use super::findings::Findings;
 use super::messages::Message;
@@ -54,7 +56,7 @@ impl Scalar {
     }
 }
 
-/// A key and its value.
+/// A key, composed as formulas read names (NFC), and its value.
 #[derive(Clone, Debug)]
 pub(super) struct Entry {
     pub(super) key: String,
@@ -232,28 +234,42 @@ impl Builder<'_> {
     fn mapping(&mut self, open: &Open) -> Result<Kind, Box<Diagnostic>> {
         let mut entries: Vec<Entry> = Vec::with_capacity(open.children.len() / 2);
         let mut seen: HashMap<String, Location> = HashMap::new();
+        let mut split = false;
         for pair in open.children.chunks_exact(2) {
             let [key, value] = [&pair[0], &pair[1]];
             let Some(text) = self.key(key)? else { continue };
+            let text = normal(text);
             if open.flow && slips::stands_alone(self.text, key, value) {
-                // The third part of a formula with two commas: the first two were reported together.
-                if entries.last().is_some_and(|entry| matches!(entry.value.kind, Kind::Broken)) {
-                    continue;
-                }
-                self.found.report(slips::split(self.text, entries.last(), key, text));
-                if let Some(previous) = entries.last_mut() {
-                    previous.value = Rc::new(Node { kind: Kind::Broken, at: previous.value.at, size: Size::default() });
+                // The third part of a formula with two commas was reported with the first two.
+                if !split {
+                    split = self.alone(&mut entries, key, text);
                 }
                 continue;
             }
-            if let Some(first) = seen.get(text) {
-                self.found.twice(key.at, text, *first);
+            split = false;
+            if let Some(first) = seen.get(&text) {
+                self.found.twice(key.at, &text, *first);
                 continue;
             }
-            seen.insert(text.to_owned(), key.at);
-            entries.push(Entry { key: text.to_owned(), key_at: key.at, value: Rc::clone(value) });
+            seen.insert(text.clone(), key.at);
+            entries.push(Entry { key: text, key_at: key.at, value: Rc::clone(value) });
         }
         Ok(Kind::Mapping(entries))
+    }
+
+    /// Reports a key without a value. True where it belongs to the value before it, which then must not be read; else it
+    /// is kept, so that what it declares is known.
+    fn alone(&mut self, entries: &mut Vec<Entry>, key: &Node, text: String) -> bool {
+        let broken = |at| Rc::new(Node { kind: Kind::Broken, at, size: Size::default() });
+        let split = slips::split(self.text, entries.last(), key, &text);
+        if let (Some(diagnostic), Some(previous)) = (split, entries.last_mut()) {
+            self.found.report(diagnostic);
+            previous.value = broken(previous.value.at);
+            return true;
+        }
+        self.found.say(Message::KeyAlone, key.at, &[&text]);
+        entries.push(Entry { key: text, key_at: key.at, value: broken(key.at) });
+        false
     }
 
     /// The text of a key; `None` where it was reported.
@@ -270,6 +286,11 @@ impl Builder<'_> {
             }
         }
     }
+}
+
+/// A name as formulas read it: composed (NFC), so that the same letters are the same name however they were typed.
+pub(super) fn normal(name: &str) -> String {
+    if name.is_ascii() { name.to_owned() } else { name.nfc().collect() }
 }
 
 /// A character that cannot be shown, as its code point.

@@ -5,6 +5,7 @@
 //! function, give its scalar form in [`elementary`], its enclosure in [`interval`], and rows of references to
 //! `tests/data/interval_references.py`.
 
+pub mod dense;
 pub mod elementary;
 pub mod interval;
 pub mod quotient;

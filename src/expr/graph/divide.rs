@@ -33,6 +33,13 @@ pub(super) struct Near {
     pub(super) slope: Option<NodeId>,
 }
 
+/// Whether divided differences are wanted too.
+#[derive(Clone, Copy, PartialEq, Eq)]
+enum Slopes {
+    Built,
+    LeftOut,
+}
+
 /// A row split at x = 0.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
 pub struct Division {
@@ -45,14 +52,20 @@ pub struct Division {
 impl Graph {
     /// What `node` is where state `i` is 0, and its quotient by that state.
     pub fn divide(&mut self, node: NodeId, i: usize) -> Division {
-        let near = self.near_zero(node, i);
+        let near = self.near_zero(&[node], i, Slopes::Built)[&node];
         let quotient = if near.zero == AtZero::Is(self.zero()) { near.slope } else { None };
         Division { zero: near.zero, quotient }
     }
 
     /// What `node` is where state `i` is 0, by continuity.
     pub fn at_zero(&mut self, node: NodeId, i: usize) -> AtZero {
-        self.near_zero(node, i).zero
+        self.restrict(&[node], i)[0]
+    }
+
+    /// What each of some nodes is where state `i` is 0, by continuity.
+    pub fn restrict(&mut self, nodes: &[NodeId], i: usize) -> Vec<AtZero> {
+        let known = self.near_zero(nodes, i, Slopes::LeftOut);
+        nodes.iter().map(|node| known[node].zero).collect()
     }
 
     /// Whether `node` vanishes identically where state `i` is 0.
@@ -60,17 +73,17 @@ impl Graph {
         self.at_zero(node, i) == AtZero::Is(self.zero())
     }
 
-    fn near_zero(&mut self, node: NodeId, i: usize) -> Near {
+    fn near_zero(&mut self, nodes: &[NodeId], i: usize, slopes: Slopes) -> HashMap<NodeId, Near> {
         let mut known: HashMap<NodeId, Near> = HashMap::new();
-        for inner in self.reachable(&[node]) {
+        for inner in self.reachable(nodes) {
             let near = if self.depends_on(inner, i) {
-                self.near_of(inner, i, &known)
+                self.near_of(inner, i, slopes, &known)
             } else {
                 Near { zero: AtZero::Is(inner), vanishes: self.is(inner, 0.0), power: false, slope: Some(self.zero()) }
             };
             known.insert(inner, near);
         }
-        known[&node]
+        known
     }
 
     /// An interaction row counts as independent of x: where x is absent the state that it is evaluated at says so.
@@ -78,7 +91,7 @@ impl Graph {
         self.facts(node).may_depend_on(i) && !matches!(self.operation(node), Operation::Interaction { .. })
     }
 
-    fn near_of(&mut self, node: NodeId, i: usize, known: &HashMap<NodeId, Near>) -> Near {
+    fn near_of(&mut self, node: NodeId, i: usize, slopes: Slopes, known: &HashMap<NodeId, Near>) -> Near {
         let operation = self.operation(node);
         let operands: Vec<Near> = operation.operands().into_iter().flatten().map(|operand| known[&operand]).collect();
         if let Operation::State(_) = operation {
@@ -86,7 +99,10 @@ impl Graph {
         }
         let zero = self.zero_of(operation, &operands);
         let is_zero = zero == AtZero::Is(self.zero());
-        let slope = self.slope_of(operation, &operands, i);
+        let slope = match slopes {
+            Slopes::Built => self.slope_of(operation, &operands, i),
+            Slopes::LeftOut => None,
+        };
         let power = self.is_power(operation, &operands);
         Near { zero, vanishes: is_zero && self.vanishes(operation, &operands), power, slope }
     }

@@ -261,18 +261,24 @@ impl Graph {
 
     /// Every node that the given ones need, operands before users.
     pub fn reachable(&self, outputs: &[NodeId]) -> Vec<NodeId> {
-        let mut needed = vec![false; self.nodes.len()];
+        // A graph may hold many rows that these nodes have nothing to do with, so the marks are kept small.
+        let mut marks = vec![0u64; self.nodes.len().div_ceil(64)];
+        let mut needed = Vec::new();
         let mut stack = outputs.to_vec();
         while let Some(node) = stack.pop() {
-            if std::mem::replace(&mut needed[node.index()], true) {
+            let (word, bit) = (node.index() / 64, 1 << (node.index() % 64));
+            if marks[word] & bit != 0 {
                 continue;
             }
+            marks[word] |= bit;
+            needed.push(node);
             stack.extend(self.operation(node).operands().into_iter().flatten());
             if let Operation::Interaction { block, row } = self.operation(node) {
                 stack.extend(self.matrices[block].formulas[row].iter().map(|&(_, entry)| entry));
             }
         }
-        (0..self.nodes.len()).filter(|&i| needed[i]).map(|i| NodeId(i as u32)).collect()
+        needed.sort_unstable();
+        needed
     }
 
     /// The node of an operation, shared with an equal one that is there already.

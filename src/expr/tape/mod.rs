@@ -7,12 +7,13 @@
 
 use std::sync::Arc;
 
-use super::graph::{Graph, NodeId, Operation};
+use super::graph::{Graph, Matrix, NodeId, Operation};
 
 pub mod gradient;
 pub mod jet;
 pub mod lanes;
 pub mod number;
+pub mod propagate;
 pub mod run;
 
 /// Index of a register: of the operation that writes it.
@@ -44,40 +45,44 @@ pub struct Tape {
 }
 
 impl Tape {
-    /// Compiles the given nodes; the tape's outputs are theirs, in order.
+    /// Compiles the given nodes over all states; the tape's outputs are theirs, in order.
     pub fn new(graph: &Graph, outputs: &[NodeId]) -> Self {
+        let all: Vec<usize> = (0..graph.states()).collect();
+        Self::over(graph, outputs, &all)
+    }
+
+    /// Compiles the given nodes over some of the states, in that order; the others are 0.
+    ///
+    /// # Panics
+    /// If a node depends on another state, other than through a matrix block.
+    pub fn over(graph: &Graph, outputs: &[NodeId], variables: &[usize]) -> Self {
         let needed = graph.reachable(outputs);
-        let is_fixed = |node: &&NodeId| !graph.facts(**node).state_dependent;
-        let is_moving = |node: &&NodeId| {
-            graph.facts(**node).state_dependent && !matches!(graph.operation(**node), Operation::State(_))
+        let is_state = |node: NodeId| matches!(graph.operation(node), Operation::State(_));
+        let operations = |keep: &dyn Fn(NodeId) -> bool| -> Vec<(NodeId, Operation<NodeId>)> {
+            let operation = |&node: &NodeId| (node, renumbered(graph.operation(node), variables));
+            needed.iter().filter(|&&node| keep(node)).map(operation).collect()
         };
-        let mut registers = vec![Register::MAX; graph.len()];
-        let fixed: Vec<_> = needed.iter().filter(is_fixed).map(|&node| (node, graph.operation(node))).collect();
+        let mut registers = vec![Register::MAX; needed.last().map_or(0, |node| node.index() + 1)];
+        let fixed = operations(&|node| !graph.facts(node).state_dependent);
         let fixed = place(&mut registers, &fixed, 0);
         let first_state = fixed.len();
-        let mut moving: Vec<Operation<Register>> = (0..graph.states()).map(Operation::State).collect();
         for &node in &needed {
             if let Operation::State(i) = graph.operation(node) {
-                registers[node.index()] = (first_state + i) as Register;
+                let position = variables.iter().position(|&variable| variable == i);
+                let position = position.unwrap_or_else(|| unreachable!("state {i} is not a variable"));
+                registers[node.index()] = (first_state + position) as Register;
             }
         }
-        let rest: Vec<_> = needed.iter().filter(is_moving).map(|&node| (node, graph.operation(node))).collect();
-        moving.extend(place(&mut registers, &rest, first_state + graph.states()));
-        let blocks = graph.matrices().iter().map(|matrix| Block {
-            order: matrix.order,
-            numbers: matrix.numbers.clone(),
-            formulas: matrix
-                .formulas
-                .iter()
-                .map(|row| row.iter().map(|&(j, entry)| (j, registers[entry.index()])).collect())
-                .collect(),
-        });
-        let dependence = dependence(&moving, first_state, graph.states());
+        let rest = operations(&|node| graph.facts(node).state_dependent && !is_state(node));
+        let mut moving: Vec<Operation<Register>> = (0..variables.len()).map(Operation::State).collect();
+        moving.extend(place(&mut registers, &rest, first_state + variables.len()));
+        let blocks = graph.matrices().iter().map(|matrix| block(matrix, variables, &registers)).collect();
+        let dependence = dependence(&moving, first_state, variables.len());
         Self {
-            states: graph.states(),
+            states: variables.len(),
             parameters: graph.parameters().len(),
             outputs: outputs.iter().map(|node| registers[node.index()]).collect(),
-            blocks: Arc::new(blocks.collect()),
+            blocks: Arc::new(blocks),
             fixed,
             moving,
             dependence,
@@ -107,6 +112,31 @@ impl Tape {
     fn first_state(&self) -> usize {
         self.fixed.len()
     }
+}
+
+/// A row of a matrix block by its place among the variables.
+fn renumbered(operation: Operation<NodeId>, variables: &[usize]) -> Operation<NodeId> {
+    match operation {
+        Operation::Interaction { block, row } => {
+            let position = variables.iter().position(|&variable| variable == row);
+            let row = position.unwrap_or_else(|| unreachable!("row {row} is not a variable's"));
+            Operation::Interaction { block, row }
+        }
+        other => other,
+    }
+}
+
+/// The part of a matrix between the variables; empty where no row of it is needed.
+fn block(matrix: &Matrix, variables: &[usize], registers: &[Register]) -> Block {
+    let register = |node: NodeId| registers.get(node.index()).copied().filter(|&register| register != Register::MAX);
+    let numbers = variables.iter().flat_map(|&i| variables.iter().map(move |&j| matrix.numbers[i * matrix.order + j]));
+    let row = |&i: &usize| {
+        let entry = |&(j, node): &(usize, NodeId)| {
+            Some((variables.iter().position(|&variable| variable == j)?, register(node)?))
+        };
+        matrix.formulas[i].iter().filter_map(entry).collect()
+    };
+    Block { order: variables.len(), numbers: numbers.collect(), formulas: variables.iter().map(row).collect() }
 }
 
 /// Gives the nodes the next registers, and returns their operations on registers.

@@ -10,7 +10,7 @@ use super::names::{Names, Scope, Written};
 use super::species::{SPECIES_LIMIT, bare};
 use super::table::{Cell, Table};
 use crate::diag::Location;
-use crate::model::messages::Message;
+use crate::model::messages::{Message, digits};
 use crate::model::tree::{Entry as Pair, Kind, Node};
 use crate::model::{Block, Entry, Placed, Species};
 
@@ -21,7 +21,7 @@ pub(super) struct Raw<'n> {
     at: Location,
     growth: Source<'n>,
     matrix: Source<'n>,
-    upper: Option<f64>,
+    upper: Option<Placed<f64>>,
 }
 
 /// Where entries come from.
@@ -38,7 +38,10 @@ pub(super) fn open<'n>(desk: &mut Desk<'_>, fields: &Fields<'n>, names: &mut Nam
     let fields = desk.fields(&entry.value, &BLOCK, "the Lotka–Volterra block", entry.key_at)?;
     let growth = fields.get("growth").map_or(Source::Lost, |node| source(desk, node, "\"growth\"", matrix::growth));
     let matrix = fields.get("matrix").map_or(Source::Lost, |node| source(desk, node, "\"matrix\"", matrix::matrix));
-    let upper = fields.get("upper").and_then(|node| desk.positive(node, "\"upper\""));
+    let upper = fields.get("upper").and_then(|node| {
+        let value = desk.positive(node, "\"upper\"")?;
+        Some(Placed { value, at: node.at })
+    });
     names.incomplete |= matches!(growth, Source::Lost) || matches!(matrix, Source::Lost);
     if let (Source::File(growth), Source::File(matrix)) = (&growth, &matrix) {
         same_species(desk, growth, matrix);
@@ -91,8 +94,12 @@ impl Raw<'_> {
                 }
             }
         }
+        let Some(upper) = &self.upper else { return };
         for one in species.iter_mut().filter(|one| one.upper.is_none() && self.names(&one.symbol)) {
-            one.upper = self.upper;
+            one.upper = Some(upper.value);
+            if upper.value <= one.lower {
+                desk.say(Message::UpperBelowLower, upper.at, &[&digits(upper.value), &digits(one.lower)]);
+            }
         }
     }
 

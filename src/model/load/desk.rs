@@ -12,7 +12,7 @@ use crate::diag::nearest::nearest;
 use crate::diag::{Diagnostic, Location, Sources};
 use crate::model::Placed;
 use crate::model::findings::Findings;
-use crate::model::messages::Message;
+use crate::model::messages::{Message, digits};
 use crate::model::tree::{Entry, Kind, Node};
 use crate::model::yaml::Typed;
 
@@ -91,7 +91,7 @@ impl<'f> Desk<'f> {
 
     /// A map with the keys of a table; an empty value is an empty map. `name` is what messages call it.
     pub(super) fn fields<'n>(&mut self, node: &'n Node, table: &Table, name: &str, at: Location) -> Option<Fields<'n>> {
-        let entries = if is_null(node) { &[][..] } else { self.mapping(node, name, table.keys)? };
+        let entries = if is_null(node) { &[][..] } else { self.mapping(node, name, table)? };
         for entry in entries {
             if !table.keys.iter().any(|key| key.name == entry.key) {
                 self.unknown_key(entry, table);
@@ -117,9 +117,9 @@ impl<'f> Desk<'f> {
         self.say(Message::UnknownKey, entry.key_at, &[&table.name, &entry.key, &names]);
     }
 
-    fn mapping<'n>(&mut self, node: &'n Node, name: &str, keys: &[Key]) -> Option<&'n [Entry]> {
-        let example = keys.iter().find(|key| key.required).or(keys.first()).map_or("{}", |key| key.example);
-        self.map(node, name, "keys and values", &format!("write for example {{{example}}}"))
+    fn mapping<'n>(&mut self, node: &'n Node, name: &str, table: &Table) -> Option<&'n [Entry]> {
+        let example = table.keys.iter().find(|key| key.required).or(table.keys.first()).map_or("{}", |key| key.example);
+        self.map(node, name, table.form, &format!("write for example {{{example}}}"))
     }
 
     /// A map whose keys are names of the user's own.
@@ -221,7 +221,7 @@ impl<'f> Desk<'f> {
         if value > 0.0 {
             return Some(value);
         }
-        self.say(Message::NotPositive, node.at, &[&name, &value]);
+        self.say(Message::NotPositive, node.at, &[&name, &digits(value)]);
         None
     }
 
@@ -231,7 +231,7 @@ impl<'f> Desk<'f> {
         if value >= 0.0 {
             return Some(value);
         }
-        self.say(Message::Negative, node.at, &[&name, &value]);
+        self.say(Message::Negative, node.at, &[&name, &digits(value)]);
         None
     }
 

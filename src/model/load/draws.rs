@@ -7,7 +7,7 @@ use super::names::Names;
 use super::parameters::limits_in_words;
 use super::table::{Cell, Form, Table, open};
 use crate::diag::Location;
-use crate::model::messages::Message;
+use crate::model::messages::{Message, digits};
 use crate::model::{Draw, DrawTable, Parameter, ParameterId};
 
 /// Bytes of a file of draws.
@@ -92,6 +92,6 @@ fn value(desk: &mut Desk<'_>, table: &Table, cell: Cell) -> Option<f64> {
 fn within(desk: &mut Desk<'_>, parameter: &Parameter, value: f64, at: Location) {
     let (min, max) = (parameter.min.unwrap_or(f64::NEG_INFINITY), parameter.max.unwrap_or(f64::INFINITY));
     if !(min..=max).contains(&value) {
-        desk.say(Message::DrawOutside, at, &[&value, &parameter.name, &limits_in_words(min, max)]);
+        desk.say(Message::DrawOutside, at, &[&digits(value), &parameter.name, &limits_in_words(min, max)]);
     }
 }

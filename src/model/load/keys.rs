@@ -17,8 +17,13 @@ pub(super) struct Key {
 pub(super) struct Table {
     /// What it is called in "… has no key".
     pub(super) name: &'static str,
+    /// What may stand in its place, as it reads after "expected".
+    pub(super) form: &'static str,
     pub(super) keys: &'static [Key],
 }
+
+const MAP: &str = "keys and values";
+const NUMBER_OR_MAP: &str = "a number, or keys and values";
 
 const fn needed(name: &'static str, what: &'static str, example: &'static str) -> Key {
     Key { name, required: true, what, example }
@@ -32,6 +37,7 @@ const NOTE: Key = key("note", "a remark", "note: survey of 2019");
 
 pub(super) const MODEL: Table = Table {
     name: "a model",
+    form: MAP,
     keys: &[
         needed("title", "one line that says what is modelled", "title: Lake trout under two quotas"),
         NOTE,
@@ -54,6 +60,7 @@ pub(super) const MODEL: Table = Table {
 
 pub(super) const TIME: Table = Table {
     name: "\"time\"",
+    form: MAP,
     keys: &[
         needed("unit", "the unit of time", "unit: yr"),
         needed("step", "how much time one application of the map takes", "step: 1"),
@@ -62,6 +69,7 @@ pub(super) const TIME: Table = Table {
 
 pub(super) const SPECIES: Table = Table {
     name: "a species",
+    form: MAP,
     keys: &[
         key("symbol", "the name that formulas use", "symbol: S"),
         key("unit", "the unit of abundance", "unit: kt"),
@@ -70,12 +78,12 @@ pub(super) const SPECIES: Table = Table {
         key("population", "the group it belongs to", "population: cod"),
         key("role", "fleet or resource", "role: fleet"),
         key("aim", "keep or remove", "aim: remove"),
-        NOTE,
     ],
 };
 
 pub(super) const PARAMETER: Table = Table {
     name: "a parameter",
+    form: NUMBER_OR_MAP,
     keys: &[
         needed("value", "the base value", "value: 0.9"),
         key("unit", "its unit", "unit: 1/yr"),
@@ -90,14 +98,18 @@ pub(super) const PARAMETER: Table = Table {
 
 /// The distributions, each with the table of its own map.
 pub(super) const DRAWS: &[(&str, Table)] = &[
-    ("normal", Table { name: "a normal draw", keys: &[needed("sd", "the standard deviation", "sd: 0.1")] }),
-    ("lognormal", Table { name: "a lognormal draw", keys: &[needed("cv", "the coefficient of variation", "cv: 0.2")] }),
-    ("uniform", Table { name: "a uniform draw", keys: &[] }),
-    ("triangular", Table { name: "a triangular draw", keys: &[] }),
+    ("normal", Table { name: "a normal draw", form: MAP, keys: &[needed("sd", "the standard deviation", "sd: 0.1")] }),
+    (
+        "lognormal",
+        Table { name: "a lognormal draw", form: MAP, keys: &[needed("cv", "the coefficient of variation", "cv: 0.2")] },
+    ),
+    ("uniform", Table { name: "a uniform draw", form: MAP, keys: &[] }),
+    ("triangular", Table { name: "a triangular draw", form: MAP, keys: &[] }),
     (
         "beta",
         Table {
             name: "a beta draw",
+            form: MAP,
             keys: &[needed("a", "the first shape", "a: 2"), needed("b", "the second shape", "b: 5")],
         },
     ),
@@ -105,27 +117,28 @@ pub(super) const DRAWS: &[(&str, Table)] = &[
 
 pub(super) const PROCESS: Table = Table {
     name: "a process",
+    form: MAP,
     keys: &[
         needed("rate", "how fast it goes", "rate: r*N"),
         needed("effect", "what one unit of it does to each species", "effect: {N: 1}"),
-        NOTE,
     ],
 };
 
 pub(super) const HARVEST: Table = Table {
     name: "a harvest",
+    form: MAP,
     keys: &[
         key("takes", "how much of each species is taken", "takes: {N: q*E*N}"),
         key("counts", "a yield that the equations already contain", "counts: {N: q*E*N}"),
         key("when", "before or after the step", "when: before"),
         key("price", "what one unit of each species is worth", "price: {N: 0.3}"),
         key("cost", "the cost per unit of time", "cost: c*E"),
-        NOTE,
     ],
 };
 
 pub(super) const BLOCK: Table = Table {
     name: "a Lotka–Volterra block",
+    form: MAP,
     keys: &[
         needed("growth", "each species' own growth, or the name of a CSV file", "growth: {H: 0.8}"),
         needed("matrix", "the effects on each species, or the name of a CSV file", "matrix: {H: {H: -0.001}}"),
@@ -135,35 +148,36 @@ pub(super) const BLOCK: Table = Table {
 
 pub(super) const SURVEY: Table = Table {
     name: "a survey's estimate",
+    form: NUMBER_OR_MAP,
     keys: &[
         needed("value", "the estimated abundance", "value: 610"),
         key("cv", "its coefficient of variation", "cv: 0.2"),
-        NOTE,
     ],
 };
 
 pub(super) const CORRELATION: Table = Table {
     name: "a correlation",
+    form: MAP,
     keys: &[
         needed("between", "the two parameters", "between: [r, K]"),
         needed("rank", "the rank correlation", "rank: -0.4"),
-        NOTE,
     ],
 };
 
 pub(super) const SCENARIO: Table = Table {
     name: "a scenario",
+    form: MAP,
     keys: &[
         key("values", "new values of parameters", "values: {E: 0.5*E}"),
         key("without", "the processes and harvests left out", "without: [trawl]"),
         key("harvest", "harvests added or replaced", "harvest: {quota: {takes: {S: Q}}}"),
         key("processes", "processes added or replaced", "processes: {stocking: {rate: 5, effect: {S: 1}}}"),
-        NOTE,
     ],
 };
 
 pub(super) const SKETCH: Table = Table {
     name: "\"sketch\"",
+    form: MAP,
     keys: &[
         needed("x", "the species on the horizontal axis", "x: S"),
         needed("y", "the species on the vertical axis", "y: C"),

@@ -6,12 +6,12 @@
 use std::collections::{HashMap, HashSet};
 
 use super::desk::Desk;
-use super::names::normal;
 use super::species::SPECIES_LIMIT;
 use super::table::{Cell, Form, Table, open};
 use crate::diag::Location;
 use crate::model::Placed;
 use crate::model::messages::Message;
+use crate::model::tree::normal;
 
 /// Bytes of a matrix file.
 const MATRIX_LIMIT: usize = 16 << 20;

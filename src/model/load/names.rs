@@ -5,16 +5,14 @@
 
 use std::collections::BTreeMap;
 
-use unicode_normalization::UnicodeNormalization;
-
 use super::desk::Desk;
 use crate::diag::nearest::nearest;
-use crate::diag::{Diagnostic, Location};
+use crate::diag::{Diagnostic, Location, Span};
 use crate::expr::ast::{Builtin, Expr, ExprKind};
 use crate::expr::lex::is_identifier;
 use crate::expr::parse::parse;
-use crate::model::messages::Message;
-use crate::model::tree::{Entry, Kind, Node};
+use crate::model::messages::{Message, digits};
+use crate::model::tree::{Entry, Kind, Node, normal};
 use crate::model::yaml::Typed;
 use crate::model::{Formula, Name, ParameterId, SpeciesId, Term, follow};
 
@@ -43,11 +41,6 @@ pub(super) struct Written {
     pub(super) text: String,
     pub(super) at: Location,
     pub(super) origin: Vec<u32>,
-}
-
-/// The name as formulas read it.
-pub(super) fn normal(name: &str) -> String {
-    if name.is_ascii() { name.to_owned() } else { name.nfc().collect() }
 }
 
 /// A name of letters, digits and underscores that resembles the text.
@@ -113,7 +106,7 @@ impl Names {
         match self.get(symbol) {
             Some(Name::Species(id)) => return Some(id),
             Some(other) => desk.say(Message::NotASpecies, at, &[&symbol, &Self::describe(other), &symbols]),
-            None if self.incomplete => desk.unsure(),
+            None if self.incomplete || self.symbols.is_empty() => desk.unsure(),
             None => {
                 let near = desk.nearest(symbol, self.symbols.iter().map(String::as_str));
                 match (self.long.get(symbol), near) {
@@ -199,6 +192,9 @@ impl Names {
             }
             _ => {}
         });
+        if !found.is_empty() && !unsure {
+            found.extend(self.hidden_time(&formula, &seen));
+        }
         if unsure {
             desk.unsure();
         }
@@ -207,6 +203,15 @@ impl Names {
             desk.report(diagnostic);
         }
         sound.then_some(formula)
+    }
+
+    /// The time in a part of the formula that could not be read, most often as `sin(2*pi*t)`.
+    fn hidden_time(&self, formula: &Formula, seen: &[&str]) -> Option<Diagnostic> {
+        let mut unknown =
+            ["t", "time"].into_iter().filter(|word| !seen.contains(word) && !self.declared.contains_key(*word));
+        let (start, word) = unknown.find_map(|word| Some((whole_word(&formula.text, word)?, word)))?;
+        let at = formula.locate(Span::new(start, start + word.len()));
+        Some(Message::TimeInFormula.at(at, &[&word]))
     }
 
     /// What is wrong with the use of a name. In a hurry, where it is to be counted only, the cause is not looked for.
@@ -244,6 +249,13 @@ impl Names {
     }
 }
 
+/// Where a word stands by itself.
+fn whole_word(text: &str, word: &str) -> Option<usize> {
+    let joins = |c: char| c.is_ascii_digit() || is_identifier(c.encode_utf8(&mut [0; 4]));
+    let mut places = text.match_indices(word).map(|(start, _)| start);
+    places.find(|&start| !text[..start].ends_with(joins) && !text[start + word.len()..].starts_with(joins))
+}
+
 /// Bounds that are plain numbers and in the wrong order; those of other kinds are for the lint to weigh.
 fn bounds_reversed(formula: &Formula, call: &Expr, arguments: &[Expr]) -> Option<Diagnostic> {
     let [_, low, high] = arguments else { return None };
@@ -251,7 +263,7 @@ fn bounds_reversed(formula: &Formula, call: &Expr, arguments: &[Expr]) -> Option
     let ExprKind::Call(builtin, _) = call.kind else { return None };
     (lo >= hi).then(|| {
         let at = formula.locate(low.span.to(high.span));
-        Message::BoundsReversed.at(at, &[&lo, &hi, &builtin.row().name])
+        Message::BoundsReversed.at(at, &[&digits(lo), &digits(hi), &builtin.row().name])
     })
 }
 

@@ -33,11 +33,25 @@ pub(super) fn why_not_a_number(text: &str, plain: bool) -> (Message, String) {
     if is_number(trimmed) {
         return (Message::LeadingZero, without_leading_zeros(trimmed));
     }
+    if trimmed.parse::<f64>().is_ok() || trimmed.ends_with('∞') {
+        return (Message::NotFinite, String::new());
+    }
+    if let Some(advice) = with_unit(trimmed) {
+        return (Message::NumberWithUnit, advice);
+    }
     let operators = ['+', '-', '*', '/', '^', '('];
     if trimmed.contains(operators) && trimmed.contains(|c: char| c.is_alphanumeric()) && !is_identifier(trimmed) {
         return (Message::FormulaForNumber, String::new());
     }
     (Message::NotANumber, String::new())
+}
+
+/// A number with a unit behind it, as it should be written.
+fn with_unit(text: &str) -> Option<String> {
+    let end = text.find(|c: char| c.is_whitespace() || c.is_alphabetic())?;
+    let (number, unit) = (&text[..end], text[end..].trim_start());
+    let starts_unit = unit.starts_with(char::is_alphabetic);
+    (starts_unit && number.parse::<f64>().is_ok()).then(|| format!("{{value: {number}, unit: {unit}}}"))
 }
 
 fn without_leading_zeros(digits: &str) -> String {
@@ -73,7 +87,11 @@ mod tests {
             ("00", true, Message::LeadingZero, "0"),
             ("0.5*r", true, Message::FormulaForNumber, ""),
             ("NA", true, Message::NotANumber, ""),
-            ("inf", true, Message::NotANumber, ""),
+            ("inf", true, Message::NotFinite, ""),
+            ("NaN", true, Message::NotFinite, ""),
+            ("100 kt", true, Message::NumberWithUnit, "{value: 100, unit: kt}"),
+            ("0.3/yr", true, Message::FormulaForNumber, ""),
+            ("1.5kt/yr", true, Message::NumberWithUnit, "{value: 1.5, unit: kt/yr}"),
             ("-", true, Message::NotANumber, ""),
         ] {
             assert_eq!(why_not_a_number(text, plain), (message, advice.to_owned()), "{text}");

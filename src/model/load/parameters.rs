@@ -2,9 +2,9 @@
 
 use super::desk::{Desk, Fields, is_null};
 use super::keys::{CORRELATION, DRAWS, PARAMETER};
-use super::names::{Names, normal};
+use super::names::Names;
 use crate::diag::Location;
-use crate::model::messages::Message;
+use crate::model::messages::{Message, digits};
 use crate::model::tree::{Entry, Kind, Node};
 use crate::model::{Correlation, Draw, DrawTable, Name, Parameter, ParameterId, Placed};
 
@@ -51,7 +51,7 @@ fn one(desk: &mut Desk<'_>, entry: &Entry) -> Parameter {
 
 fn plain(entry: &Entry) -> Parameter {
     Parameter {
-        name: normal(&entry.key),
+        name: entry.key.clone(),
         at: entry.key_at,
         value: 0.0,
         value_at: entry.value.at,
@@ -68,7 +68,7 @@ fn plain(entry: &Entry) -> Parameter {
 fn range(desk: &mut Desk<'_>, node: &Node) -> Option<Placed<[f64; 2]>> {
     let [low, high] = desk.pair(node, "\"range\"")?;
     if low >= high {
-        desk.say(Message::RangeReversed, node.at, &[&low, &high]);
+        desk.say(Message::RangeReversed, node.at, &[&digits(low), &digits(high)]);
         return None;
     }
     Some(Placed { value: [low, high], at: node.at })
@@ -83,25 +83,25 @@ fn limits(desk: &mut Desk<'_>, fields: &Fields<'_>, parameter: &Parameter, value
     let max = parameter.max.unwrap_or(f64::INFINITY);
     if min > max {
         let at = fields.get("min").map_or(parameter.at, |node| node.at);
-        desk.say(Message::LimitsReversed, at, &[&min, &max]);
+        desk.say(Message::LimitsReversed, at, &[&digits(min), &digits(max)]);
         return;
     }
     if let Some(value) = value.filter(|value| !(min..=max).contains(value)) {
-        desk.say(Message::ValueOutsideLimits, parameter.value_at, &[&value, &limits_in_words(min, max)]);
+        desk.say(Message::ValueOutsideLimits, parameter.value_at, &[&digits(value), &limits_in_words(min, max)]);
     }
     if let Some(Placed { value: [low, high], at }) = parameter.range
         && (high < min || low > max)
     {
-        desk.say(Message::RangeOutsideLimits, at, &[&low, &high, &limits_in_words(min, max)]);
+        desk.say(Message::RangeOutsideLimits, at, &[&digits(low), &digits(high), &limits_in_words(min, max)]);
     }
 }
 
 /// Two limits in words, where one of them may be infinite.
 pub(super) fn limits_in_words(min: f64, max: f64) -> String {
     match (min.is_finite(), max.is_finite()) {
-        (true, true) => format!("{min} to {max}"),
-        (true, false) => format!("at least {min}"),
-        _ => format!("at most {max}"),
+        (true, true) => format!("{} to {}", digits(min), digits(max)),
+        (true, false) => format!("at least {}", digits(min)),
+        _ => format!("at most {}", digits(max)),
     }
 }
 
@@ -159,7 +159,7 @@ fn suits(
     match draw {
         Draw::Lognormal { .. } => {
             if let Some(value) = value.filter(|&value| value <= 0.0) {
-                desk.say(Message::LognormalValue, entry.key_at, &[&value]);
+                desk.say(Message::LognormalValue, entry.key_at, &[&digits(value)]);
             }
         }
         Draw::Uniform | Draw::Triangular | Draw::Beta { .. } if !has_range => {
@@ -169,7 +169,7 @@ fn suits(
             if let (Some(value), Some([low, high])) = (value, range.map(|range| range.value))
                 && !(low..=high).contains(&value)
             {
-                desk.say(Message::ModeOutsideRange, entry.key_at, &[&value, &low, &high]);
+                desk.say(Message::ModeOutsideRange, entry.key_at, &[&digits(value), &digits(low), &digits(high)]);
             }
         }
         Draw::Normal { .. } | Draw::Uniform | Draw::Beta { .. } => {}
@@ -221,7 +221,7 @@ fn rank(desk: &mut Desk<'_>, node: &Node) -> Option<f64> {
     if (-1.0..=1.0).contains(&rank) {
         return Some(rank);
     }
-    desk.say(Message::RankRange, node.at, &[&rank]);
+    desk.say(Message::RankRange, node.at, &[&digits(rank)]);
     None
 }
 

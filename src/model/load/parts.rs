@@ -23,7 +23,6 @@ fn process(desk: &mut Desk<'_>, names: &Names, entry: &Entry) -> Option<Process>
     let fields = desk.fields(&entry.value, &PROCESS, &what, entry.key_at)?;
     let rate = fields.get("rate").and_then(|node| names.formula(desk, node, "\"rate\"", Scope::Everything));
     let effect = fields.get("effect").and_then(|node| names.terms(desk, node, "\"effect\"", "{N: 1}"));
-    desk.note(&fields);
     Some(Process { name: entry.key.clone(), at: entry.key_at, rate: rate?, effect: effect? })
 }
 
@@ -48,7 +47,6 @@ fn harvest(desk: &mut Desk<'_>, names: &Names, entry: &Entry, time: &TimeKind) -
     let amounts = amounts(desk, names, &fields, entry);
     let price = fields.get("price").and_then(|node| names.terms(desk, node, "\"price\"", "{N: 0.3}"));
     let cost = fields.get("cost").map(|node| names.formula(desk, node, "\"cost\"", Scope::Everything));
-    desk.note(&fields);
     let (accounting, amounts) = amounts?;
     let price = price.unwrap_or_default();
     for term in price.iter().filter(|term| amounts.iter().all(|amount| amount.species != term.species)) {

@@ -55,7 +55,6 @@ fn one(desk: &mut Desk<'_>, entry: &Entry, names: &Names, base: &Base<'_>) -> Op
     }
     scenario.processes = processes(desk, names, &fields);
     scenario.without = without(desk, &fields, base);
-    desk.note(&fields);
     contradictions(desk, &scenario);
     shared_names(desk, base, &scenario);
     Some(scenario)
@@ -150,7 +149,6 @@ fn estimate(desk: &mut Desk<'_>, entry: &Entry) -> Option<(f64, Option<f64>)> {
     let fields = desk.fields(&entry.value, &SURVEY, &name, entry.key_at)?;
     let value = fields.get("value").and_then(|node| desk.not_negative(node, &name));
     let cv = fields.get("cv").and_then(|node| desk.positive(node, "\"cv\""));
-    desk.note(&fields);
     Some((value?, cv))
 }
 

@@ -3,7 +3,7 @@
 use std::collections::BTreeMap;
 
 use super::desk::{Desk, Fields, is_null};
-use super::names::{Names, Scope, normal};
+use super::names::{Names, Scope};
 use crate::expr::ast::ExprKind;
 use crate::model::messages::Message;
 use crate::model::tree::Entry;
@@ -29,7 +29,7 @@ pub(super) fn read(desk: &mut Desk<'_>, entries: &[Entry], names: &mut Names) ->
         .iter()
         .filter_map(|entry| {
             let formula = names.formula(desk, &entry.value, &format!("\"{}\"", entry.key), Scope::Everything)?;
-            Some(Shorthand { name: normal(&entry.key), at: entry.key_at, formula })
+            Some(Shorthand { name: entry.key.clone(), at: entry.key_at, formula })
         })
         .collect();
     let order = sorted(desk, &found);

@@ -2,11 +2,11 @@
 
 use super::desk::{Desk, Fields, is_null};
 use super::keys::{AIMS, ROLES, SPECIES, TIME};
-use super::names::{Names, as_symbol, normal};
+use super::names::{Names, as_symbol};
 use crate::diag::Location;
 use crate::expr::lex::is_identifier;
-use crate::model::messages::Message;
-use crate::model::tree::{Entry, Kind, Node};
+use crate::model::messages::{Message, digits};
+use crate::model::tree::{Entry, Kind, Node, normal};
 use crate::model::{Aim, Placed, Role, Species, TimeKind};
 
 /// Species of one model.
@@ -38,8 +38,9 @@ pub(super) fn declared(desk: &mut Desk<'_>, fields: &Fields<'_>, names: &mut Nam
 fn one(desk: &mut Desk<'_>, entry: &Entry, names: &mut Names) -> Species {
     let what = format!("the species \"{}\"", entry.key);
     let Some(fields) = desk.fields(&entry.value, &SPECIES, &what, entry.key_at) else {
-        names.declare_species(desk, &entry.key, &as_symbol(&entry.key), entry.key_at);
-        return bare(&entry.key, as_symbol(&entry.key), entry.key_at, None);
+        let symbol = meant(entry);
+        names.declare_species(desk, &entry.key, &symbol, entry.key_at);
+        return bare(&entry.key, symbol, entry.key_at, None);
     };
     let symbol = symbol(desk, &fields, entry);
     names.declare_species(desk, &entry.key, &symbol.value, symbol.at);
@@ -49,7 +50,6 @@ fn one(desk: &mut Desk<'_>, entry: &Entry, names: &mut Names) -> Species {
     species.unit = fields.get("unit").and_then(|node| desk.line(node, "\"unit\"", "a unit such as kt"));
     species.population =
         fields.get("population").and_then(|node| desk.line(node, "\"population\"", "a name")).map(|text| text.value);
-    desk.note(&fields);
     if let Some(node) = fields.get("role") {
         let roles = [Role::Population, Role::Fleet, Role::Resource];
         species.role = desk.word(node, "\"role\"", ROLES).map_or(Role::default(), |index| roles[index]);
@@ -59,6 +59,14 @@ fn one(desk: &mut Desk<'_>, entry: &Entry, names: &mut Names) -> Species {
         species.aim = desk.word(node, "\"aim\"", AIMS).map_or(Aim::default(), |index| aims[index]);
     }
     species
+}
+
+/// The symbol that was probably meant where the entry is no map: a single word is one.
+fn meant(entry: &Entry) -> String {
+    match &entry.value.kind {
+        Kind::Scalar(scalar) if is_identifier(&scalar.value) => normal(&scalar.value),
+        _ => as_symbol(&entry.key),
+    }
 }
 
 /// A species of which nothing but its names and the search box is known.
@@ -82,9 +90,8 @@ fn symbol(desk: &mut Desk<'_>, fields: &Fields<'_>, entry: &Entry) -> Placed<Str
         let text = desk.line(node, "\"symbol\"", "a name for formulas");
         return text.unwrap_or_else(|| Placed { value: as_symbol(&entry.key), at: entry.key_at });
     }
-    let key = normal(&entry.key);
-    if is_identifier(&key) {
-        return Placed { value: key, at: entry.key_at };
+    if is_identifier(&entry.key) {
+        return Placed { value: entry.key.clone(), at: entry.key_at };
     }
     let proposal = as_symbol(&entry.key);
     desk.say(Message::SymbolNeeded, entry.key_at, &[&entry.key, &proposal]);
@@ -96,7 +103,7 @@ fn upper(desk: &mut Desk<'_>, fields: &Fields<'_>, lower: Option<f64>) -> Option
     let upper = desk.positive(node, "\"upper\"")?;
     let lower = lower.unwrap_or(0.0);
     if upper <= lower {
-        desk.say(Message::UpperBelowLower, node.at, &[&upper, &lower]);
+        desk.say(Message::UpperBelowLower, node.at, &[&digits(upper), &digits(lower)]);
     }
     Some(upper)
 }

@@ -1,6 +1,6 @@
 //! The file as a whole: sections in the order in which they need each other, then what only the whole can tell.
 
-use super::desk::{Desk, Fields};
+use super::desk::{Desk, Fields, is_null};
 use super::keys::MODEL;
 use super::names::Names;
 use super::{block, draws, parameters, parts, scenarios, shorthand, species};
@@ -32,7 +32,7 @@ pub(super) fn model(desk: &mut Desk<'_>, root: &Node) -> Option<Model> {
     let next = parts::equations(desk, &names, &fields, "next");
     let harvest = parts::harvests(desk, &names, &fields, &time);
     let block = raw.and_then(|raw| raw.read(desk, &names, species.len()));
-    dynamics(desk, &fields, &time);
+    dynamics(desk, &fields, &time, &species);
     next_for_all(desk, &fields, &time, &next, &species);
     shared_names(desk, &processes, &harvest);
     let now = scenarios::now(desk, &fields, &names);
@@ -85,12 +85,12 @@ fn count(desk: &mut Desk<'_>, species: &[Species], root: &Node, names: &Names) {
 }
 
 /// That what moves the species suits the kind of time.
-fn dynamics(desk: &mut Desk<'_>, fields: &Fields<'_>, time: &TimeKind) {
+fn dynamics(desk: &mut Desk<'_>, fields: &Fields<'_>, time: &TimeKind, species: &[Species]) {
     let continuous = ["processes", "change", "lotka_volterra"];
     if *time == TimeKind::Continuous {
         if let Some(entry) = fields.entry("next") {
             desk.say(Message::NextContinuous, entry.key_at, &[]);
-        } else if continuous.iter().all(|key| fields.entry(key).is_none()) {
+        } else if !species.is_empty() && continuous.iter().all(|key| fields.get(key).is_none_or(is_empty)) {
             desk.say(Message::NoDynamics, fields.at, &[]);
         }
         return;
@@ -98,6 +98,11 @@ fn dynamics(desk: &mut Desk<'_>, fields: &Fields<'_>, time: &TimeKind) {
     for entry in continuous.iter().filter_map(|key| fields.entry(key)) {
         desk.say(Message::NotDiscrete, entry.key_at, &[&entry.key]);
     }
+}
+
+/// Whether nothing stands there, or an empty map.
+fn is_empty(node: &Node) -> bool {
+    is_null(node) || matches!(&node.kind, Kind::Mapping(entries) if entries.is_empty())
 }
 
 fn next_for_all(desk: &mut Desk<'_>, fields: &Fields<'_>, time: &TimeKind, next: &[Term], species: &[Species]) {

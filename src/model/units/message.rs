@@ -65,7 +65,7 @@ pub(super) fn warning(piece: Piece<'_>, reason: &Reason<'_>, mismatch: &Mismatch
     };
     let message = format!("{} {}, but {due}{factor}", quote(piece), is_in(&mismatch.got));
     let warning = Diagnostic::warning(piece.formula.locate(piece.expr.span), message)
-        .expected(format!("expected {}", noun(want)))
+        .expected(noun(want))
         .help(help(reason, mismatch));
     match reason {
         Reason::Beside(other) => {

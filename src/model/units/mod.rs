@@ -67,7 +67,7 @@ pub fn malformed(model: &Model) -> Vec<Diagnostic> {
         .filter_map(|unit| {
             let slip = read(&unit.value).err()?;
             let at = place_in(&model.sources, unit, slip.span);
-            Some(Diagnostic::error(at, slip.message).expected("expected a unit such as kt/yr").help(slip.help))
+            Some(Diagnostic::error(at, slip.message).expected("a unit such as kt/yr").help(slip.help))
         })
         .collect()
 }

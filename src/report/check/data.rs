@@ -4,7 +4,7 @@ use serde_json::{Map, Value, json};
 
 use super::equations::{community_size, equations, left_side};
 use super::formula::Style;
-use super::{Subject, Upper, draw_of, unit_of};
+use super::{Subject, draw_of, unit_of};
 use crate::diag::Diagnostic;
 use crate::diag::render::position;
 use crate::model::{
@@ -81,18 +81,14 @@ fn species(subject: &Subject<'_>) -> Value {
     items
         .map(|(row, species)| {
             let unit = unit_of(species.unit.as_ref().map(|unit| &unit.value), subject.units.inferred.species.get(row));
-            let upper = subject.uppers.get(row).copied().unwrap_or(Upper::Unknown);
+            let bound = subject.bounds.and_then(|bounds| bounds.get(row));
             json!({
                 "symbol": species.symbol,
                 "name": species.name,
                 "unit": unit.as_ref().map(|(unit, _)| unit),
                 "unit_inferred": unit.as_ref().is_some_and(|(_, is_inferred)| *is_inferred),
-                "box": [Some(species.lower), upper.value()],
-                "upper": match upper {
-                    Upper::Given(_) => "given",
-                    Upper::Chosen(_) => "chosen",
-                    Upper::Unknown => "unknown",
-                },
+                "box": [Some(species.lower), bound.map(|bound| bound.upper)],
+                "chosen": bound.is_some_and(|bound| bound.chosen),
                 "population": species.population,
                 "role": match species.role {
                     Role::Population => "population",

@@ -13,7 +13,7 @@
 //! - `community`: `{"species", "entries"}` where a Lotka–Volterra block is too large to be written out: its size, and how
 //!   many entries are not zero
 //! - `shorthand`: `{"name", "formula", "unit"}`
-//! - `species`: `{"symbol", "name", "unit", "unit_inferred", "box": [low, high], "upper": "given"|"chosen"|"unknown",
+//! - `species`: `{"symbol", "name", "unit", "unit_inferred", "box": [low, high], "chosen",
 //!   "population", "role", "aim"}`
 //! - `parameters`: `{"name", "value", "unit", "unit_inferred", "range": [low, high], "draw", "min", "max", "control",
 //!   "note"}`; `draw` is in words
@@ -38,6 +38,7 @@ pub use formula::Style;
 pub use text::text;
 
 use crate::diag::Diagnostic;
+use crate::model::system::bounds::Bound;
 use crate::model::units::Units;
 use crate::model::{Draw, Model, Parameter, ParameterId};
 
@@ -48,30 +49,10 @@ pub struct Subject<'m> {
     pub model: &'m Model,
     /// What its units come to.
     pub units: &'m Units,
-    /// The upper side of the search box, one entry a species.
-    pub uppers: &'m [Upper],
+    /// The search box, where there is one.
+    pub bounds: Option<&'m [Bound]>,
     /// Everything that looks wrong.
     pub warnings: &'m [Diagnostic],
-}
-
-/// The upper side of a species' search range.
-#[derive(Clone, Copy, Debug, PartialEq)]
-pub enum Upper {
-    /// The file says it.
-    Given(f64),
-    /// It was chosen from the species' own growth.
-    Chosen(f64),
-    /// Neither; the model cannot be searched.
-    Unknown,
-}
-
-impl Upper {
-    fn value(self) -> Option<f64> {
-        match self {
-            Upper::Given(x) | Upper::Chosen(x) => Some(x),
-            Upper::Unknown => None,
-        }
-    }
 }
 
 /// A unit for showing, and whether it was inferred.

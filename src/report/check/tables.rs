@@ -4,8 +4,9 @@
 
 use super::formula::{Style, number};
 use super::layout::{columns, headed};
-use super::{Subject, Upper, draw_of, unit_of};
+use super::{Subject, draw_of, unit_of};
 use crate::diag::cleanse::cleanse;
+use crate::model::system::bounds::Bound;
 use crate::model::{
     Accounting, Aim, Harvest, Model, Parameter, ParameterId, Process, Role, Scenario, Species, Term, TimeKind, When,
 };
@@ -15,8 +16,8 @@ pub(super) fn species(subject: &Subject<'_>) -> String {
     let rows = subject.model.species.iter().enumerate().map(|(row, species)| {
         let unit = unit_of(species.unit.as_ref().map(|unit| &unit.value), subject.units.inferred.species.get(row));
         let name = if species.name == species.symbol { String::new() } else { clean(&species.name) };
-        let upper = subject.uppers.get(row).copied().unwrap_or(Upper::Unknown);
-        vec![species.symbol.clone(), name, unit_cell(unit), search_range(species.lower, upper), standing(species)]
+        let range = search_range(species, subject.bounds.and_then(|bounds| bounds.get(row)));
+        vec![species.symbol.clone(), name, unit_cell(unit), range, standing(species)]
     });
     headed(&["", "name", "unit", "searched", ""], &rows.collect::<Vec<_>>())
 }
@@ -101,11 +102,11 @@ fn unit_cell(unit: Option<(String, bool)>) -> String {
     }
 }
 
-fn search_range(lower: f64, upper: Upper) -> String {
-    match upper {
-        Upper::Given(high) => span(lower, high),
-        Upper::Chosen(high) => format!("{} (chosen)", span(lower, high)),
-        Upper::Unknown => format!("from {}, no upper side", number(lower)),
+fn search_range(species: &Species, bound: Option<&Bound>) -> String {
+    match bound {
+        Some(bound) if bound.chosen => format!("{} (chosen)", span(bound.lower, bound.upper)),
+        Some(bound) => span(bound.lower, bound.upper),
+        None => format!("from {}, no upper side", number(species.lower)),
     }
 }
 
