@@ -1,5 +1,5 @@
 //! Any bytes as a model file and the tables it names: no panic, no hang, every message placed inside the text; and a
-//! sound model assembles, divides, differentiates and runs.
+//! sound model assembles, is linted and shown, divides, differentiates and runs.
 //!
 //! The tables stand behind the model, each after a line `=====`, in the order in which they are read.
 #![no_main]
@@ -9,10 +9,12 @@ use std::cell::Cell;
 use libfuzzer_sys::fuzz_target;
 use restpoint::diag::render::render;
 use restpoint::expr::tape::Tape;
+use restpoint::model::Model;
+use restpoint::model::lint::lint;
 use restpoint::model::load::{Files, load};
 use restpoint::model::system::System;
 use restpoint::model::units::check_units;
-use restpoint::model::Model;
+use restpoint::report::check::{Style, Subject, json, text};
 
 const BORDER: &[u8] = b"\n=====\n";
 
@@ -44,7 +46,12 @@ fn split(mut bytes: &[u8]) -> Vec<&[u8]> {
 
 fn assemble(model: &Model) {
     let Ok(mut system) = System::new(model, &[]) else { return };
-    let _ = system.bounds(model);
+    let bounds = system.bounds(model).ok();
+    let warnings = bounds.as_ref().map_or_else(Vec::new, |bounds| lint(model, &system, bounds));
+    let subject = Subject { model, units: &check_units(model), bounds: bounds.as_deref(), warnings: &warnings };
+    let shown = text(&subject, Style::Unicode);
+    assert!(!shown.chars().any(|c| c.is_control() && c != '\n'), "control characters in {shown:?}");
+    json(&subject);
     if model.species.len() > MOST_SPECIES {
         return;
     }
@@ -70,7 +77,6 @@ fuzz_target!(|bytes: &[u8]| {
     }
     assert_eq!(model.is_none(), !found.is_empty(), "a model or messages, not both or neither");
     if let Some(model) = model {
-        let _ = check_units(&model);
         assemble(&model);
     }
 });

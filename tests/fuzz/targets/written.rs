@@ -84,9 +84,7 @@ impl Written {
         let mut at = |expr: &Expr| self.part(expr, values);
         let (value, holds_empty) = match &expr.kind {
             ExprKind::Number(value) => (Interval::point(*value), false),
-            ExprKind::Name(name) => {
-                (values[NAMES.iter().position(|known| known == name).unwrap_or_default()], false)
-            }
+            ExprKind::Name(name) => (values[NAMES.iter().position(|known| known == name).unwrap_or_default()], false),
             ExprKind::Neg(a) => {
                 let a = at(a);
                 (-a, a.is_empty())
