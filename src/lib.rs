@@ -4,6 +4,7 @@
 //! [`model::Model`], its formulas an exact graph ([`expr::graph`]), the graph a tape ([`expr::tape`]) that runs over
 //! numbers, lanes, intervals and jets. Start reading at [`model`]; the module map stands in `DEVELOPERS.md`.
 
+pub mod analysis;
 pub mod cli;
 pub mod diag;
 pub mod expr;

@@ -3,6 +3,7 @@
 mod draft;
 
 use draft::Draft;
+use restpoint::model::load::{NoFiles, load};
 use restpoint::model::units::{Units, check_units, malformed};
 
 trait Checks {
@@ -207,4 +208,21 @@ fn malformed_units_are_errors_and_fit_anything() {
         ("1//", "\"/\" cannot stand here in a unit")
     );
     assert!(check_units(&model).warnings.is_empty());
+}
+
+#[test]
+fn a_file_with_a_malformed_unit_is_no_model() {
+    let check = |unit: &str, expected: &[&str]| {
+        let text = format!("title: t\ntime: yr\nspecies: {{S: {{upper: 9, unit: {unit}}}}}\nchange: {{S: S}}\n");
+        let (model, _, errors) = load("model", text.as_bytes(), &NoFiles);
+        let found: Vec<&str> = errors.iter().map(|error| &text[error.at.span.start..error.at.span.end]).collect();
+        assert_eq!(found, expected, "{unit}");
+        assert_eq!(model.is_none(), !expected.is_empty(), "{unit}");
+    };
+    check("kt", &[]);
+    check("kt?", &["?"]);
+    check("\"1/(kt*yr\"", &["("]);
+    check("'kt, live'", &[","]);
+    // The file spells the slip as an escape, so that only the whole text can be pointed at.
+    check("\"kt\\u003F\"", &["\"kt\\u003F\""]);
 }

@@ -2,6 +2,11 @@
 #![allow(clippy::panic, clippy::unwrap_used, reason = "a test fails by panicking")]
 #![allow(dead_code, unreachable_pub, missing_docs, reason = "each file uses its own part")]
 
+pub mod cases;
+pub mod families;
+pub mod newton;
+pub mod text;
+
 use restpoint::expr::graph::{Graph, NodeId};
 use restpoint::expr::parse::parse;
 use restpoint::num::interval::Interval;

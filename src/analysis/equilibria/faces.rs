@@ -20,6 +20,7 @@ pub struct Face {
 }
 
 /// Walks over the faces of some rows.
+#[derive(Clone)]
 pub(super) struct Faces {
     stack: Vec<Part>,
     /// Whether a species may be absent at all: its lower side of the box is 0.
@@ -61,23 +62,47 @@ impl Faces {
     /// The next face; `None` when there are no more.
     pub(super) fn next(&mut self, graph: &mut Graph) -> Option<Face> {
         while let Some(part) = self.stack.pop() {
-            let Some(i) = self.branch(graph, &part) else {
-                if let Some(face) = leaf(&part) {
-                    return Some(face);
+            match self.branch(graph, &part) {
+                Some(i) => self.split(graph, part, i),
+                None => {
+                    if let Some(face) = leaf(&part) {
+                        return Some(face);
+                    }
                 }
-                continue;
-            };
-            let must_be_absent = part.rows[i].is_none();
-            if !must_be_absent {
-                let mut present = part.clone();
-                present.decisions[i] = Decision::Present;
-                self.stack.push(present);
-            }
-            if self.reaches_zero[i] {
-                self.stack.push(without(graph, part, i));
             }
         }
         None
+    }
+
+    /// Divides the walk into at least `wanted` walks, if there are so many faces; together, and in this order, they see
+    /// every face.
+    pub(super) fn divide(mut self, graph: &mut Graph, wanted: usize) -> Vec<Self> {
+        let mut settled = Vec::new();
+        while self.stack.len() + settled.len() < wanted {
+            // The part with most left open comes first, so that the walks are of like size.
+            let part = self.stack.remove(0);
+            match self.branch(graph, &part) {
+                Some(i) => self.split(graph, part, i),
+                None => settled.push(part),
+            }
+            if self.stack.is_empty() {
+                break;
+            }
+        }
+        let walk = |part: Part| Self { stack: vec![part], ..self.clone() };
+        self.stack.iter().cloned().chain(settled).map(walk).collect()
+    }
+
+    /// Puts both parts on the stack: species `i` present, where its rate has a value, and absent, where the box allows.
+    fn split(&mut self, graph: &mut Graph, part: Part, i: usize) {
+        if part.rows[i].is_some() {
+            let mut present = part.clone();
+            present.decisions[i] = Decision::Present;
+            self.stack.push(present);
+        }
+        if self.reaches_zero[i] {
+            self.stack.push(without(graph, part, i));
+        }
     }
 
     /// An open species that can be absent here: its rate vanishes with it, or has no value unless it is absent.

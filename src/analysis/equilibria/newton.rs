@@ -42,10 +42,12 @@ pub(super) struct Proved {
 }
 
 /// Values and derivatives over a region.
-struct Linear {
-    values: Vec<Interval>,
-    slopes: Vec<Interval>,
-    domain: Domain,
+pub(super) struct Linear {
+    /// One a row.
+    pub(super) values: Vec<Interval>,
+    /// Row by row.
+    pub(super) slopes: Vec<Interval>,
+    pub(super) domain: Domain,
 }
 
 impl<'t> Equations<'t> {
@@ -59,7 +61,8 @@ impl<'t> Equations<'t> {
         }
     }
 
-    fn linear(&mut self, region: &[Interval]) -> Linear {
+    /// Values and derivatives over a region.
+    pub(super) fn linear(&mut self, region: &[Interval]) -> Linear {
         let domain = self.intervals.at(region);
         let n = self.n;
         let values = (0..n).map(|i| *self.intervals.output(i)).collect();
@@ -73,7 +76,8 @@ impl<'t> Equations<'t> {
         Linear { values, slopes, domain }
     }
 
-    fn slopes_at(&mut self, point: &[f64]) -> Vec<f64> {
+    /// The Jacobian at a point, row by row; the values are then there too.
+    pub(super) fn slopes_at(&mut self, point: &[f64]) -> Vec<f64> {
         self.numbers.at(point);
         let n = self.n;
         let mut slopes = Vec::with_capacity(n * n);
@@ -84,6 +88,11 @@ impl<'t> Equations<'t> {
             }
         }
         slopes
+    }
+
+    /// The values at the point last evaluated.
+    pub(super) fn values(&self) -> Vec<f64> {
+        (0..self.n).map(|i| *self.numbers.output(i)).collect()
     }
 
     /// An approximate root by Newton's method from `start`; with a leash, only where the iterates stay near that region.
@@ -135,16 +144,16 @@ impl<'t> Equations<'t> {
             return None;
         }
         let shift = self.preconditioned(&inverse, &at_point.values);
-        let mut radius: Vec<f64> = (0..self.n)
-            .map(|i| (2.0 * shift[i].mag()).max(2.0 * f64::EPSILON * point[i].abs()).max(1e-300))
-            .collect();
+        let mut radius: Vec<f64> =
+            (0..self.n).map(|i| (2.0 * shift[i].mag()).max(2.0 * f64::EPSILON * point[i].abs()).max(1e-300)).collect();
         for _ in 0..INFLATIONS {
             let region = spread(point, &radius);
             let image = self.krawczyk(point, &shift, &inverse, &region)?;
             if image.iter().zip(&region).all(|(image, region)| image.interior_of(*region)) {
                 let smooth = self.linear(&image).domain.smooth;
-                let unique = self.alone(point, &inverse, around);
-                let unique = unique.iter().zip(&region).map(|(a, b)| a.hull(*b)).collect();
+                let alone = self.alone(point, &inverse, around);
+                let wider = region.iter().zip(&alone).all(|(proved, alone)| proved.subset_of(*alone));
+                let unique = if wider { alone } else { region };
                 return Some(Proved { point: middle(&image, point), enclosure: image, unique, smooth });
             }
             for i in 0..self.n {
@@ -156,13 +165,7 @@ impl<'t> Equations<'t> {
     }
 
     /// K(X) = x − C f(x) + (I − C J(X)) (X − x); `None` where the equations are not defined on X.
-    fn krawczyk(
-        &mut self,
-        point: &[f64],
-        shift: &[Interval],
-        inverse: &[f64],
-        region: &[Interval],
-    ) -> Option<Region> {
+    fn krawczyk(&mut self, point: &[f64], shift: &[Interval], inverse: &[f64], region: &[Interval]) -> Option<Region> {
         let n = self.n;
         let linear = self.linear(region);
         if !linear.domain.defined {
@@ -181,9 +184,8 @@ impl<'t> Equations<'t> {
     /// C v
     fn preconditioned(&self, inverse: &[f64], values: &[Interval]) -> Vec<Interval> {
         let n = self.n;
-        let row = |i: usize| {
-            (0..n).fold(Interval::ZERO, |sum, j| sum + Interval::point(inverse[i * n + j]) * values[j])
-        };
+        let row =
+            |i: usize| (0..n).fold(Interval::ZERO, |sum, j| sum + Interval::point(inverse[i * n + j]) * values[j]);
         (0..n).map(row).collect()
     }
 
@@ -270,7 +272,8 @@ impl<'t> Equations<'t> {
             let (first, second) = (-rest).div_pieces(product[i * n + i]);
             let at = Interval::point(middle[i]);
             let old = region[i];
-            let new = old.intersect(at + first).hull(second.map_or(Interval::EMPTY, |second| old.intersect(at + second)));
+            let new =
+                old.intersect(at + first).hull(second.map_or(Interval::EMPTY, |second| old.intersect(at + second)));
             if new.is_empty() {
                 return Cut::Empty;
             }

@@ -95,7 +95,34 @@ impl Graph {
                 let shifted = self.apply(Function::Expm1, u);
                 self.neg(shifted)
             }
+            // What is left after a share is taken, and after all above a floor is.
+            (_, Operation::Mul(c, x)) if x == a => self.share_left(a, c),
+            (_, Operation::Mul(x, c)) if x == a => self.share_left(a, c),
+            (_, Operation::Sub(x, rest)) if x == a && self.facts(a).total => rest,
+            (_, Operation::Max(x, y)) if self.is(x, 0.0) && self.excess(y, a).is_some() => {
+                let floor = self.excess(y, a).unwrap_or(a);
+                self.min(a, floor)
+            }
+            (_, Operation::Max(y, x)) if self.is(x, 0.0) && self.excess(y, a).is_some() => {
+                let floor = self.excess(y, a).unwrap_or(a);
+                self.min(a, floor)
+            }
             _ => self.intern(Operation::Sub(a, b)),
+        }
+    }
+
+    /// a − c a = (1 − c) a
+    fn share_left(&mut self, a: NodeId, c: NodeId) -> NodeId {
+        let one = self.one();
+        let share = self.sub(one, c);
+        self.mul(share, a)
+    }
+
+    /// e, where the node is a − e: then a − max(0, a − e) = min(a, e).
+    fn excess(&self, node: NodeId, a: NodeId) -> Option<NodeId> {
+        match self.operation(node) {
+            Operation::Sub(x, floor) if x == a => Some(floor),
+            _ => None,
         }
     }
 
@@ -204,7 +231,8 @@ impl Graph {
     pub fn min(&mut self, a: NodeId, b: NodeId) -> NodeId {
         match (self.constant_value(a), self.constant_value(b)) {
             (Some(x), Some(y)) => self.constant(x.min(y)),
-            _ if a == b => a,
+            _ if a == b || self.never_above(a, b) => a,
+            _ if self.never_above(b, a) => b,
             _ => self.intern(Operation::Min(a, b)),
         }
     }
@@ -213,9 +241,16 @@ impl Graph {
     pub fn max(&mut self, a: NodeId, b: NodeId) -> NodeId {
         match (self.constant_value(a), self.constant_value(b)) {
             (Some(x), Some(y)) => self.constant(x.max(y)),
-            _ if a == b => a,
+            _ if a == b || self.never_above(b, a) => a,
+            _ if self.never_above(a, b) => b,
             _ => self.intern(Operation::Max(a, b)),
         }
+    }
+
+    /// Whether a ≤ b wherever both are defined, which is everywhere.
+    fn never_above(&self, a: NodeId, b: NodeId) -> bool {
+        let (a, b) = (self.facts(a), self.facts(b));
+        a.total && b.total && a.range.hi() <= b.range.lo()
     }
 
     /// x where a ≤ b, y elsewhere.

@@ -22,6 +22,7 @@ mod fold;
 pub mod read;
 pub mod saturate;
 mod slope;
+pub mod substitute;
 
 /// Index of a node in its [`Graph`]; operands have smaller indices than what uses them.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, Hash, PartialOrd, Ord)]

@@ -105,7 +105,7 @@ fn warning(scene: &Scene<'_>, species: SpeciesId, suspect: &Suspect) -> Diagnost
     let (symbol, who) = (scene.symbol(species), &suspect.name);
     Diagnostic::warning(suspect.at, format!("{who} can drive {symbol} below zero"))
         .expected(format!("0 where {symbol} = 0"))
-        .help(format!("let it vanish with the stock, for example by the factor ramp({symbol}, 0, a small stock)"))
+        .help(format!("let it vanish with the stock, by a factor such as ramp({symbol}, 0, 10)"))
 }
 
 /// Who takes most at a point where the species is absent and its row is negative.
@@ -129,7 +129,7 @@ fn culprit<'p>(
         point[species.0] = Interval::ZERO;
         run.at(&point).defined && run.output(0).hi() < 0.0
     };
-    scene.points_for(&tape).iter().find(is_negative)?;
+    scene.points_for(&tape, scene.system.plans.len() * scene.model.species.len()).iter().find(is_negative)?;
     let values = run.outputs().skip(1);
     let by_takes = suspects.iter().zip(values).map(|(suspect, value)| (suspect, suspect.takes(value)));
     by_takes.max_by(|a, b| a.1.total_cmp(&b.1)).map(|(suspect, _)| suspect)

@@ -1,5 +1,7 @@
 //! The formulas of a model: all of them, and those whose values move the state under one scenario.
 
+use std::collections::HashMap;
+
 use crate::expr::ast::{Expr, ExprKind};
 use crate::model::{Accounting, Entry, Formula, Harvest, Model, Name, Process, ShorthandId};
 
@@ -19,8 +21,23 @@ pub(super) fn all(model: &Model) -> Vec<&Formula> {
     formulas
 }
 
-/// The formulas that move the state under a scenario, with the shorthands that they use.
-pub(super) fn in_force(model: &Model, scenario: usize) -> Vec<&Formula> {
+/// The formulas that move the state, with the shorthands that they use: each once, with the scenarios in which it does.
+pub(super) fn in_force(model: &Model) -> Vec<(&Formula, Vec<usize>)> {
+    let mut formulas: Vec<(&Formula, Vec<usize>)> = Vec::new();
+    let mut places: HashMap<*const Formula, usize> = HashMap::new();
+    for scenario in 0..model.scenarios.len() {
+        for formula in under(model, scenario) {
+            let place = *places.entry(std::ptr::from_ref(formula)).or_insert(formulas.len());
+            match formulas.get_mut(place) {
+                Some((_, scenarios)) => scenarios.push(scenario),
+                None => formulas.push((formula, vec![scenario])),
+            }
+        }
+    }
+    formulas
+}
+
+fn under(model: &Model, scenario: usize) -> Vec<&Formula> {
     let mut formulas: Vec<&Formula> = model.processes_under(scenario).into_iter().flat_map(of_process).collect();
     formulas.extend(model.change.iter().chain(&model.next).map(|term| &term.formula));
     let harvests = model.harvests_under(scenario).into_iter();

@@ -8,7 +8,6 @@ use super::reading::Reading;
 use super::scene::{Findings, Scene, enclosures, start};
 use crate::diag::Diagnostic;
 use crate::expr::ast::{BinaryOp, Builtin, Expr, ExprKind};
-use crate::expr::graph::NodeId;
 use crate::expr::tape::Tape;
 use crate::model::Formula;
 use crate::num::interval::Interval;
@@ -16,14 +15,17 @@ use crate::num::interval::Interval;
 /// Warns at the call or the quotient, once for each.
 pub(super) fn find(scene: &Scene<'_>) -> Vec<Diagnostic> {
     let mut reading = Reading::new(scene.model, scene.system);
+    let formulas = in_force(scene.model);
+    let sites: Vec<_> =
+        formulas.iter().flat_map(|found| sites(&found.0.expr).into_iter().map(move |site| (found, site))).collect();
+    let searches = sites.len() * scene.system.plans.len();
     let mut findings = Findings::default();
-    for (scenario, plan) in scene.plans() {
-        for formula in in_force(scene.model, scenario) {
-            for site in sites(&formula.expr) {
-                if let Some(level) = site.levels.iter().find(|level| crosses(scene, &mut reading, level, &plan.values))
-                {
-                    findings.add(scenario, warning(formula, &site, level));
-                }
+    for ((formula, scenarios), site) in &sites {
+        let tapes: Vec<Tape> = site.levels.iter().map(|level| tape(&mut reading, level)).collect();
+        for (scenario, plan) in scene.plans().filter(|(scenario, _)| scenarios.contains(scenario)) {
+            let mut levels = site.levels.iter().zip(&tapes);
+            if let Some((level, _)) = levels.find(|(_, tape)| crosses(scene, tape, &plan.values, searches)) {
+                findings.add(scenario, warning(formula, site, level));
             }
         }
     }
@@ -63,17 +65,23 @@ fn kinks(function: Builtin, arguments: &[Expr]) -> Vec<Level<'_>> {
     }
 }
 
-/// Whether the level is passed inside the box: the difference is proved negative at one point and positive at another.
-fn crosses(scene: &Scene<'_>, reading: &mut Reading<'_>, level: &Level<'_>, values: &[f64]) -> bool {
-    let difference = difference(reading, level);
-    let tape = Tape::new(&reading.graph, &[difference]);
+/// The difference that changes sign at a level.
+fn tape(reading: &mut Reading<'_>, (a, b): &Level<'_>) -> Tape {
+    let a = reading.node(a);
+    let b = b.map(|b| reading.node(b));
+    let difference = b.map_or(a, |b| reading.graph.sub(a, b));
+    Tape::new(&reading.graph, &[difference])
+}
+
+/// Whether a level is passed inside the box: the difference is proved negative at one point and positive at another.
+fn crosses(scene: &Scene<'_>, tape: &Tape, values: &[f64], searches: usize) -> bool {
     let has_sign = |bounds: Vec<Interval>| bounds.iter().all(|bound| bound.lo() >= 0.0 || bound.hi() <= 0.0);
-    if enclosures(&tape, values, &scene.ranges).is_some_and(has_sign) {
+    if enclosures(tape, values, &scene.ranges).is_some_and(has_sign) {
         return false;
     }
-    let mut run = start(&tape, values);
+    let mut run = start(tape, values);
     let (mut is_below, mut is_above) = (false, false);
-    for point in scene.points_for(&tape) {
+    for point in scene.points_for(tape, searches) {
         let point: Vec<Interval> = point.iter().copied().map(Interval::point).collect();
         if run.at(&point).defined {
             is_below |= run.output(0).hi() < 0.0;
@@ -83,22 +91,13 @@ fn crosses(scene: &Scene<'_>, reading: &mut Reading<'_>, level: &Level<'_>, valu
     is_below && is_above
 }
 
-fn difference(reading: &mut Reading<'_>, (a, b): &Level<'_>) -> NodeId {
-    let a = reading.node(a);
-    let b = b.map(|b| reading.node(b));
-    match b {
-        Some(b) => reading.graph.sub(a, b),
-        None => a,
-    }
-}
-
 fn warning(formula: &Formula, site: &Site<'_>, (a, b): &Level<'_>) -> Diagnostic {
     let span = site.expr.span;
     let text = formula.text.get(span.start..span.end).unwrap_or(&formula.text);
     let (what, help) = if site.is_pole {
-        ("a pole", "rates grow without bound there; an absolute value or a half-saturation may be missing")
+        ("a pole", "rates grow without bound there; a half-saturation may be missing")
     } else {
-        ("a kink", "an equilibrium on the kink has no linearisation and is marked as such")
+        ("a kink", "an equilibrium on the kink has no linearisation")
     };
     let other = b.map_or_else(|| "0".to_owned(), ToString::to_string);
     let message = format!("\"{text}\" has {what} inside the search box, where {a} = {other}");

@@ -19,7 +19,7 @@ pub(super) fn find_idle(scene: &Scene<'_>) -> Vec<Diagnostic> {
     idle.filter(|(place, _)| outcome(scene, *place) == plain)
         .map(|(_, scenario)| {
             Diagnostic::warning(scenario.at, format!("scenario \"{}\" changes nothing", scenario.name))
-                .help("give it {} if it stands for the file as it is, or set what it should change")
+                .help("write {} for the file as it is, or set what it should change")
         })
         .collect()
 }

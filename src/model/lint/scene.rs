@@ -17,8 +17,8 @@ const MOST_FOR_ALL_CORNERS: usize = 6;
 const MOST_FOR_ALL_SIDES: usize = 64;
 /// Points of the low-discrepancy set.
 const SPREAD_POINTS: u32 = 64;
-/// Operations that one search for a witness may take.
-const BUDGET: usize = 4_000_000;
+/// Operations that one lint may spend on looking for witnesses: a tenth of a second.
+const BUDGET: usize = 10_000_000;
 
 /// A model to look at.
 pub(super) struct Scene<'m> {
@@ -60,10 +60,10 @@ impl<'m> Scene<'m> {
         }
     }
 
-    /// As many of the points as the budget allows for a tape.
-    pub(super) fn points_for(&self, tape: &Tape) -> &[Vec<f64>] {
+    /// As many of the points as the budget allows for a tape that is one of `searches` alike.
+    pub(super) fn points_for(&self, tape: &Tape, searches: usize) -> &[Vec<f64>] {
         let cost = tape.operations() + tape.states() + tape.states() * tape.states() / 4;
-        &self.points[..(BUDGET / cost.max(1)).clamp(1, self.points.len())]
+        &self.points[..(BUDGET / (cost * searches).max(1)).clamp(1, self.points.len())]
     }
 }
 

@@ -16,9 +16,20 @@ use crate::model::{Formula, SpeciesId};
 pub(super) fn find(scene: &Scene<'_>) -> Vec<Diagnostic> {
     let mut reading = Reading::new(scene.model, scene.system);
     let mut findings = Findings::default();
-    for (scenario, plan) in scene.plans() {
-        for formula in in_force(scene.model, scenario) {
-            if let Some(warning) = undefined(scene, &mut reading, formula, &plan.values) {
+    let formulas = in_force(scene.model);
+    for (formula, scenarios) in &formulas {
+        let node = reading.node(&formula.expr);
+        let tape = Tape::new(&reading.graph, &[node]);
+        let points = scene.points_for(&tape, formulas.len() * scene.system.plans.len());
+        for (scenario, plan) in scene.plans().filter(|(scenario, _)| scenarios.contains(scenario)) {
+            if enclosures(&tape, &plan.values, &scene.ranges).is_some() {
+                continue;
+            }
+            let mut run = tape.start(&plan.values);
+            let undefined: Vec<&Vec<f64>> = points.iter().filter(|point| !run.at(point).defined).collect();
+            let Some(first) = undefined.first() else { continue };
+            let is_everywhere = undefined.len() == points.len();
+            if let Some(warning) = warning(scene, &mut reading, formula, &plan.values, (first, is_everywhere)) {
                 findings.add(scenario, warning);
             }
         }
@@ -26,28 +37,21 @@ pub(super) fn find(scene: &Scene<'_>) -> Vec<Diagnostic> {
     findings.finish(scene)
 }
 
-fn undefined(scene: &Scene<'_>, reading: &mut Reading<'_>, formula: &Formula, values: &[f64]) -> Option<Diagnostic> {
-    let node = reading.node(&formula.expr);
-    let tape = Tape::new(&reading.graph, &[node]);
-    if enclosures(&tape, values, &scene.ranges).is_some() {
-        return None;
-    }
-    let mut run = tape.start(values);
-    let points = scene.points_for(&tape);
-    let point = points.iter().find(|point| !run.at(point).defined)?;
+fn warning(
+    scene: &Scene<'_>,
+    reading: &mut Reading<'_>,
+    formula: &Formula,
+    values: &[f64],
+    (point, is_everywhere): (&[f64], bool),
+) -> Option<Diagnostic> {
     let piece = smallest(reading, &formula.expr, values, point)?;
     let text = formula.text.get(piece.span.start..piece.span.end).unwrap_or(&formula.text);
     let node = reading.node(piece);
-    let mut run = tape.start(values);
-    let place = if points.iter().all(|point| !run.at(point).defined) {
-        "anywhere".to_owned()
-    } else {
-        place(scene, reading, node, point)
-    };
+    let place = if is_everywhere { "anywhere".to_owned() } else { place(scene, reading, node, point) };
     Some(
         Diagnostic::warning(formula.locate(piece.span), format!("\"{text}\" is not defined {place}"))
             .expected("a number everywhere in the search box")
-            .help("equilibria there have no linearisation; raise \"lower\" if they do not matter"),
+            .help("raise \"lower\" if no equilibrium there matters"),
     )
 }
 

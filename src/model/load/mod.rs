@@ -22,7 +22,7 @@ mod whole;
 
 use crate::diag::{Diagnostic, Location, Sources, Span};
 use crate::model::messages::Message;
-use crate::model::{Model, yaml};
+use crate::model::{Model, units, yaml};
 use desk::Desk;
 
 /// Where the tables come from that a model names.
@@ -58,7 +58,11 @@ pub fn load(name: &str, text: &[u8], files: &dyn Files) -> (Option<Model>, Sourc
     let model = root.and_then(|root| whole::model(&mut desk, &root));
     let (sources, diagnostics) = desk.finish();
     let model = model.filter(|_| diagnostics.is_empty()).map(|model| Model { sources: sources.clone(), ..model });
-    (model, sources, diagnostics)
+    // Units are read once everything else is sound, for they are read with the places of the finished model.
+    match model.as_ref().map(units::malformed) {
+        Some(slips) if !slips.is_empty() => (None, sources, slips),
+        _ => (model, sources, diagnostics),
+    }
 }
 
 #[cfg(test)]

@@ -81,13 +81,13 @@ fn help(reason: &Reason<'_>, mismatch: &Mismatch) -> String {
             let (got, want) = (&mismatch.got, &mismatch.want);
             let mut ratio = want.clone();
             ratio.multiply(got, -1.0);
-            format!("use one unit throughout, or multiply by a parameter with the unit {ratio}")
+            format!("use one unit, or multiply by a parameter in {ratio}")
         }
         (Reason::Plain(_) | Reason::VaryingPower, _) => {
             format!("divide it by a reference level in {}", mismatch.got)
         }
         (_, _) if is_plain(&mismatch.got) && !is_plain(&mismatch.want) => {
-            "a number that has a unit belongs in \"parameters\", with a name and its unit".to_owned()
+            "give the number a name and a unit in \"parameters\"".to_owned()
         }
         _ => String::new(),
     }

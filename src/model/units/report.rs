@@ -10,6 +10,8 @@ use crate::diag::{Diagnostic, Location};
 use crate::expr::ast::{Expr, ExprKind};
 use crate::model::{Model, Name};
 
+/// Most warnings: a model with more has one cause for most of them.
+const MOST_WARNINGS: usize = 100;
 /// Most further places that one warning names.
 const MOST_REPEATS: usize = 3;
 
@@ -43,6 +45,9 @@ impl Report {
         let shared: Vec<Name> = names.iter().copied().filter(|name| !matches!(name, Name::Species(_))).collect();
         if let Some(earlier) = self.findings.iter_mut().find(|finding| finding.is_same_slip(&ratio, &shared)) {
             earlier.repeat(piece.formula.locate(piece.expr.span));
+            return;
+        }
+        if self.findings.len() == MOST_WARNINGS {
             return;
         }
         let mut warning = warning(piece, reason, mismatch);

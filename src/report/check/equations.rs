@@ -127,7 +127,7 @@ fn takes(harvest: &Harvest, species: SpeciesId) -> impl Iterator<Item = (&Harves
 /// x (growth + Σ entries × abundances); entries of zero are left out.
 fn community(model: &Model, block: &Block, species: SpeciesId) -> Option<Signed> {
     let own = node(ExprKind::Name(model.species.get(species.0)?.symbol.clone()));
-    if community_size(model).is_some() {
+    if model.species.len() > MOST_WRITTEN_OUT {
         let community = node(ExprKind::Name(COMMUNITY.to_owned()));
         return Some(Signed { is_negative: false, expr: binary(BinaryOp::Mul, own, community) });
     }

@@ -63,8 +63,11 @@ pub(super) fn today(model: &Model) -> String {
     columns(&rows.collect::<Vec<_>>())
 }
 
-/// What each scenario changes.
+/// What each scenario changes; nothing where the file has none, which the model holds as one at its title.
 pub(super) fn scenarios(model: &Model, style: Style) -> String {
+    if matches!(model.scenarios.as_slice(), [only] if only.at == model.title.at && only.values.is_empty()) {
+        return String::new();
+    }
     let rows: Vec<_> = model.scenarios.iter().flat_map(|scenario| scenario_rows(model, scenario, style)).collect();
     columns(&rows)
 }

@@ -1,0 +1,135 @@
+//! Roots on the border of the orthant: zeros shown to be exactly zero, the same point seen on two faces, and points where
+//! the rates have no derivative.
+
+use super::faces::Face;
+use super::newton::{Equations, Proved, Region};
+use super::{Candidate, Derivative, Equilibrium, Probably, Problem, Unresolved, everywhere};
+use crate::expr::graph::divide::AtZero;
+use crate::expr::graph::{Graph, NodeId};
+use crate::expr::tape::Tape;
+use crate::num::interval::Interval;
+
+/// What became of a root of a face's equations.
+pub(super) enum Settled {
+    /// An equilibrium.
+    Root(Candidate),
+    /// A root that may or may not lie in the orthant.
+    Open(Unresolved),
+}
+
+/// Takes a face's root for an equilibrium, unless it is outside the box; `None` where it is.
+pub(super) fn settle(graph: &mut Graph, face: &Face, root: &Proved, problem: &Problem<'_>) -> Option<Settled> {
+    let n = graph.states();
+    let enclosure = everywhere(&root.enclosure, face, n);
+    let outside = |i: usize| {
+        let [low, high] = problem.sides[i];
+        enclosure[i].hi() < low || enclosure[i].lo() > high
+    };
+    if (0..n).any(outside) {
+        return None;
+    }
+    let near_zero: Vec<usize> = face.variables.iter().copied().filter(|&i| enclosure[i].contains_zero()).collect();
+    if near_zero.is_empty() {
+        return Some(Settled::Root(candidate(face, root, n)));
+    }
+    match exact_zeros(graph, face, root, &near_zero, problem) {
+        Some(proved) => Some(Settled::Root(proved)),
+        None => Some(Settled::Open(Unresolved {
+            region: enclosure,
+            probably: Probably::DoubleRoot,
+            text: "an equilibrium on the border, or one beside it, or both: they are too close to be told apart".into(),
+            witnesses: Vec::new(),
+        })),
+    }
+}
+
+fn candidate(face: &Face, root: &Proved, n: usize) -> Candidate {
+    let mut state = vec![0.0; n];
+    for (&i, &x) in face.variables.iter().zip(&root.point) {
+        state[i] = x;
+    }
+    let enclosure = everywhere(&root.enclosure, face, n);
+    let derivative = if root.smooth { Derivative::Exists } else { Derivative::Kink };
+    let equilibrium = Equilibrium { state, enclosure, proven: true, derivative };
+    Candidate { equilibrium, unique: everywhere(&root.unique, face, n) }
+}
+
+/// The root with some abundances exactly 0: their rates vanish with them, and the others' rates have a root in the region
+/// where there is only one.
+fn exact_zeros(
+    graph: &mut Graph,
+    face: &Face,
+    root: &Proved,
+    zeros: &[usize],
+    problem: &Problem<'_>,
+) -> Option<Candidate> {
+    let mut rows: Vec<NodeId> = face.rows.clone();
+    for &i in zeros {
+        rows = graph.restrict(&rows, i).into_iter().map(is).collect::<Option<_>>()?;
+    }
+    let zero = graph.zero();
+    let mut rest = Face { variables: Vec::new(), rows: Vec::new(), divided: Vec::new() };
+    let mut start = Vec::new();
+    let mut around = Vec::new();
+    for (position, &i) in face.variables.iter().enumerate() {
+        if zeros.contains(&i) {
+            if rows[position] != zero {
+                return None;
+            }
+            continue;
+        }
+        rest.variables.push(i);
+        rest.rows.push(rows[position]);
+        rest.divided.push(face.divided[position]);
+        start.push(root.point[position]);
+        around.push(root.unique[position]);
+    }
+    let n = graph.states();
+    let tape = Tape::over(graph, &rest.rows, &rest.variables);
+    let scale = start.iter().map(|x: &f64| x.abs()).collect();
+    let mut equations = Equations::new(&tape, problem.values, scale);
+    let point = equations.approximate(&start, None)?;
+    let proved = equations.prove(&point, &around)?;
+    let mut found = candidate(&rest, &proved, n);
+    let unique = everywhere(&root.unique, face, n);
+    let same = found.equilibrium.enclosure.iter().zip(&unique).all(|(side, unique)| side.subset_of(*unique));
+    found.unique = unique;
+    same.then_some(found)
+}
+
+fn is(zero: AtZero) -> Option<NodeId> {
+    match zero {
+        AtZero::Is(node) => Some(node),
+        _ => None,
+    }
+}
+
+/// Drops a point that was found on two faces: the same species are present, and the enclosures meet.
+pub(super) fn merge(candidates: &mut Vec<Candidate>) {
+    let mut kept: Vec<Candidate> = Vec::new();
+    for candidate in candidates.drain(..) {
+        let here = &candidate.equilibrium;
+        let same = |other: &Candidate| {
+            let there = &other.equilibrium;
+            (0..here.state.len())
+                .all(|i| here.has(i) == there.has(i) && !here.enclosure[i].intersect(there.enclosure[i]).is_empty())
+        };
+        if !kept.iter().any(same) {
+            kept.push(candidate);
+        }
+    }
+    *candidates = kept;
+}
+
+/// Asks the full rates, not the divided ones, whether they have a derivative there.
+pub(super) fn look_at_derivative(tape: &Tape, values: &[f64], equilibrium: &mut Equilibrium) {
+    let exact: Vec<Interval> = values.iter().map(|&value| Interval::point(value)).collect();
+    let mut run = tape.start_gradient(&exact);
+    let domain = run.at(&equilibrium.enclosure);
+    let bounded = (0..tape.outputs()).all(|i| run.gradient(i).is_none_or(|row| row.iter().all(|s| s.is_bounded())));
+    if !domain.defined || !bounded {
+        equilibrium.derivative = Derivative::Missing;
+    } else if !domain.smooth {
+        equilibrium.derivative = Derivative::Kink;
+    }
+}

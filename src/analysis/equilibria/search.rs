@@ -1,0 +1,273 @@
+//! Branch and prune on one face: boxes are cut, a root is proved, or the box is halved, until nothing is left open.
+//!
+//! Breadth first, so that roots are found early and their surroundings fall away. A box is cut by what is known about
+//! proved roots, by constraint propagation and by interval Newton steps; then Newton's method from its middle proposes a
+//! root. What is still open when a box is very small stays, and is said to be open.
+
+use std::collections::VecDeque;
+
+use super::newton::{Cut, Equations, Proved, Region};
+use super::witness::Witnesses;
+use crate::expr::tape::Tape;
+use crate::expr::tape::propagate::{Propagation, Sweep};
+use crate::num::interval::Interval;
+
+/// When a box goes another round: some side shrank to this share.
+const WORTHWHILE: f64 = 0.6;
+/// Rounds of cutting before a box is halved.
+const ROUNDS: usize = 4;
+/// Sweeps of propagation in one round.
+const SWEEPS: usize = 3;
+/// A box is very small when every side is below this share of its place.
+const SMALLEST: f64 = 1e-6;
+/// No side may get this many times wider, relatively, than the one that is cut.
+const LOPSIDED: f64 = 32.0;
+
+/// What one face holds.
+#[derive(Debug, Default)]
+pub(super) struct Found {
+    pub(super) roots: Vec<Proved>,
+    /// Boxes about which nothing was decided.
+    pub(super) open: Vec<Region>,
+    /// Boxes that lie on a continuum of equilibria.
+    pub(super) continuum: Vec<Region>,
+    /// Singular points met on the way.
+    pub(super) witnesses: Witnesses,
+    /// Size of each variable.
+    pub(super) scale: Vec<f64>,
+    /// Boxes that were looked at.
+    pub(super) boxes: usize,
+    /// Whether the budget ended before the boxes did; what was left is among the open ones.
+    pub(super) stopped: bool,
+}
+
+/// How much work one face may take.
+pub(super) struct Limits<'l> {
+    pub(super) boxes: usize,
+    pub(super) stop: &'l dyn Fn() -> bool,
+}
+
+/// Everything that is needed on one face.
+pub(super) struct Search<'t> {
+    equations: Equations<'t>,
+    propagation: Propagation<'t>,
+    found: Found,
+    queue: VecDeque<Region>,
+}
+
+impl<'t> Search<'t> {
+    /// Looks for all roots of the tape's outputs in a region.
+    pub(super) fn run(tape: &'t Tape, parameters: &[f64], region: Region, limits: &Limits<'_>) -> Found {
+        let exact: Vec<Interval> = parameters.iter().map(|&p| Interval::point(p)).collect();
+        let mut propagation = tape.start_propagation(&exact);
+        let mut region = region;
+        if propagate(&mut propagation, &mut region) == Kept::Nothing {
+            return Found { boxes: 1, ..Found::default() };
+        }
+        // What is left after the first cut says how large things are; the box as given may be far too wide.
+        let scale = region.iter().map(|side| side.mag().clamp(f64::MIN_POSITIVE, f64::MAX)).collect();
+        let equations = Equations::new(tape, parameters, scale);
+        let queue = VecDeque::from([region]);
+        let mut search = Search { equations, propagation, found: Found::default(), queue };
+        while let Some(region) = search.queue.pop_front() {
+            if search.found.boxes >= limits.boxes || (limits.stop)() {
+                search.found.stopped = true;
+                search.found.open.push(region);
+                search.found.open.extend(search.queue.drain(..));
+                break;
+            }
+            search.found.boxes += 1;
+            search.look_at(region);
+        }
+        search.found.scale = search.equations.scale;
+        search.found
+    }
+
+    fn look_at(&mut self, mut region: Region) {
+        let Some(slopes) = self.cut(&mut region) else { return };
+        let middle: Vec<f64> = region.iter().map(|side| side.mid()).collect();
+        let mut proved = false;
+        if let Some(point) = self.equations.approximate(&middle, Some(&region)) {
+            proved = self.try_to_prove(&point, &region);
+            if trim(&mut region, &self.found.roots) == Kept::Nothing {
+                return;
+            }
+        }
+        if !proved && self.found.witnesses.settles(&mut self.equations, &region) {
+            self.found.continuum.push(region);
+        } else if self.is_smallest(&region) {
+            self.last_look(region);
+        } else {
+            self.halve(region, &slopes);
+        }
+    }
+
+    /// Cuts a box until it no longer pays; `None` where nothing is left, or what is left is settled.
+    fn cut(&mut self, region: &mut Region) -> Option<Vec<Interval>> {
+        let mut slopes = Vec::new();
+        for _ in 0..ROUNDS {
+            let before = region.clone();
+            if trim(region, &self.found.roots) == Kept::Nothing
+                || propagate(&mut self.propagation, region) == Kept::Nothing
+            {
+                return None;
+            }
+            match self.equations.cut(region) {
+                Cut::Empty => return None,
+                Cut::Left { unique: true, .. } if self.settle(region) => return None,
+                Cut::Left { slopes: found, .. } => slopes = found,
+            }
+            if !shrank(&before, region, WORTHWHILE) {
+                break;
+            }
+        }
+        Some(slopes)
+    }
+
+    /// A box that is proved to hold exactly one root: finds and keeps it.
+    fn settle(&mut self, region: &Region) -> bool {
+        let middle: Vec<f64> = region.iter().map(|side| side.mid()).collect();
+        let Some(point) = self.equations.approximate(&middle, None) else { return false };
+        let Some(proved) = self.equations.prove(&point, region) else { return false };
+        // The root that Newton ran to must be the one in the box.
+        if !proved.enclosure.iter().zip(region).all(|(root, side)| root.subset_of(*side)) {
+            return false;
+        }
+        self.keep(proved);
+        true
+    }
+
+    /// Whether there is a proved root at the point, new or known.
+    fn try_to_prove(&mut self, point: &[f64], around: &Region) -> bool {
+        let inside = |root: &Proved| root.unique.iter().zip(point).all(|(side, &x)| side.contains(x));
+        if self.found.roots.iter().any(inside) {
+            return true;
+        }
+        let proved = self.equations.prove(point, around);
+        let found = proved.is_some();
+        proved.into_iter().for_each(|proved| self.keep(proved));
+        found
+    }
+
+    fn keep(&mut self, proved: Proved) {
+        let same = |root: &Proved| {
+            let inside = |outer: &Region, inner: &Region| inner.iter().zip(outer).all(|(a, b)| a.subset_of(*b));
+            inside(&root.unique, &proved.enclosure) || inside(&proved.unique, &root.enclosure)
+        };
+        if !self.found.roots.iter().any(same) {
+            self.found.roots.push(proved);
+        }
+    }
+
+    fn is_smallest(&self, region: &Region) -> bool {
+        region.iter().zip(&self.equations.scale).all(|(side, &scale)| relative(*side, scale) < SMALLEST)
+    }
+
+    /// Cutting may have brought a box down to a point before Newton got a chance.
+    fn last_look(&mut self, mut region: Region) {
+        let middle: Vec<f64> = region.iter().map(|side| side.mid()).collect();
+        if let Some(point) = self.equations.approximate(&middle, None) {
+            self.try_to_prove(&point, &region);
+        }
+        if trim(&mut region, &self.found.roots) != Kept::Nothing {
+            self.found.open.push(region);
+        }
+    }
+
+    fn halve(&mut self, region: Region, slopes: &[Interval]) {
+        let side = self.side_to_halve(&region, slopes);
+        let cut = place_to_halve(region[side]);
+        let mut low = region.clone();
+        let mut high = region;
+        low[side] = Interval::new(low[side].lo(), cut);
+        high[side] = Interval::new(cut, high[side].hi());
+        self.queue.extend([low, high]);
+    }
+
+    /// The side with the largest summed relative smear (Kearfott & Novoa 1990), unless that leaves another lopsided.
+    fn side_to_halve(&self, region: &Region, slopes: &[Interval]) -> usize {
+        let n = self.equations.n;
+        let width: Vec<f64> = region.iter().map(|side| side.width()).collect();
+        let relative: Vec<f64> =
+            region.iter().zip(&self.equations.scale).map(|(side, &scale)| relative(*side, scale)).collect();
+        let widest = largest(&relative);
+        let mut smear = vec![0.0; n];
+        for row in slopes.chunks(n) {
+            let parts: Vec<f64> = row.iter().zip(&width).map(|(slope, w)| slope.mag() * w).collect();
+            let whole: f64 = parts.iter().sum();
+            if whole > 0.0 && whole.is_finite() {
+                smear.iter_mut().zip(&parts).for_each(|(sum, part)| *sum += part / whole);
+            }
+        }
+        let chosen = largest(&smear);
+        let splittable = width[chosen] > 0.0 && smear[chosen] > 0.0;
+        if splittable && relative[widest] <= LOPSIDED * relative[chosen] { chosen } else { widest }
+    }
+}
+
+/// Whether anything is left of a box.
+#[derive(Clone, Copy, PartialEq, Eq)]
+enum Kept {
+    Something,
+    Nothing,
+}
+
+fn propagate(propagation: &mut Propagation<'_>, region: &mut Region) -> Kept {
+    for _ in 0..SWEEPS {
+        let before = region.clone();
+        if propagation.sweep(region) == Sweep::Empty {
+            return Kept::Nothing;
+        }
+        if !shrank(&before, region, WORTHWHILE) {
+            break;
+        }
+    }
+    Kept::Something
+}
+
+/// Cuts off what lies where a proved root is alone: all of the box, or what one side leaves.
+fn trim(region: &mut Region, roots: &[Proved]) -> Kept {
+    for root in roots {
+        let mut uncovered = (0..region.len()).filter(|&i| !region[i].subset_of(root.unique[i]));
+        match (uncovered.next(), uncovered.next()) {
+            (None, _) => return Kept::Nothing,
+            (Some(i), None) => region[i] = left_of(region[i], root.unique[i]),
+            _ => {}
+        }
+    }
+    Kept::Something
+}
+
+/// What is left of a side when an interval that reaches over one of its ends is taken away.
+fn left_of(side: Interval, covered: Interval) -> Interval {
+    if covered.contains(side.lo()) {
+        Interval::new(covered.hi(), side.hi())
+    } else if covered.contains(side.hi()) {
+        Interval::new(side.lo(), covered.lo())
+    } else {
+        side
+    }
+}
+
+fn shrank(before: &Region, after: &Region, share: f64) -> bool {
+    before.iter().zip(after).any(|(before, after)| after.width() < share * before.width())
+}
+
+fn relative(side: Interval, scale: f64) -> f64 {
+    side.width() / side.mag().max(1e-10 * scale)
+}
+
+fn largest(values: &[f64]) -> usize {
+    let mut best = 0;
+    for (i, value) in values.iter().enumerate() {
+        if *value > values[best] {
+            best = i;
+        }
+    }
+    best
+}
+
+/// The middle, or for a side that spans orders of magnitude an eighth of its upper end.
+fn place_to_halve(side: Interval) -> f64 {
+    if side.lo() >= 0.0 && side.lo() < side.hi() / 16.0 { side.hi() / 8.0 } else { side.mid() }
+}
