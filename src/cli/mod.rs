@@ -2,7 +2,7 @@
 //!
 //! `arguments` has the commands and options; one module a command does its work on values and returns what to print. Only
 //! here and in `shell` is anything read, written or printed. To add a command: a variant in `arguments`, a module, a line
-//! in [`run`].
+//! in `run`.
 
 use std::io::{self, IsTerminal, Write};
 use std::process::ExitCode;
