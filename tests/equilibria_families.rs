@@ -5,12 +5,12 @@ use common::solve::solve;
 #[test]
 fn report() {
     let mut all = examples();
-    for seed in 1..30 {
+    for seed in 1..2 {
         all.push(webs::web(3, seed));
         all.push(webs::web(4, seed));
         all.push(webs::webx(3, seed));
     }
-    for seed in 1..10 {
+    for seed in 5..10 {
         all.push(webs::web(6, seed));
         all.push(webs::webx(5, seed));
     }

@@ -27,7 +27,8 @@ pub struct Family {
     pub text: ModelText,
     /// Enclosures of isolated equilibria with an invertible Jacobian (at kinks: all of whose slopes are), one root in each.
     pub simple: Vec<Point>,
-    /// Isolated equilibria with a singular Jacobian: no search can prove these, nor that there is just one.
+    /// Isolated equilibria with a singular Jacobian. Where the rows of those present are singular by themselves (folds) no
+    /// search can prove them; a transcritical one is simple among those present.
     pub degenerate: Vec<Point>,
     /// Equilibria by continuity alone: a row or slope is not defined there.
     pub corners: Vec<Point>,

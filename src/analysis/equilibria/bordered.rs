@@ -158,7 +158,8 @@ impl<'e, 't> Bordered<'e, 't> {
                 return Some((image, mu));
             }
             for (r, (image, &y)) in radius.iter_mut().zip(image.iter().zip(&at)) {
-                *r = (2.0 * *r).max(2.0 * (*image - Interval::point(y)).mag());
+                // Twice what the image needs, not twice what was tried: μ is small only where x is held tightly.
+                *r = (2.0 * (*image - Interval::point(y)).mag()).max(f64::MIN_POSITIVE);
             }
         }
         None

@@ -13,7 +13,7 @@ use crate::expr::tape::propagate::{Propagation, Sweep};
 use crate::num::interval::Interval;
 
 /// When a box goes another round: some side shrank to this share.
-const WORTHWHILE: f64 = 0.6;
+const WORTHWHILE: f64 = 0.8;
 /// Rounds of cutting before a box is halved.
 const ROUNDS: usize = 4;
 /// Sweeps of propagation in one round.
