@@ -7,6 +7,7 @@
 mod above;
 mod border;
 mod faces;
+pub mod linear;
 mod newton;
 mod remains;
 mod search;
