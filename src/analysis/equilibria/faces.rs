@@ -74,6 +74,27 @@ impl Faces {
         None
     }
 
+    /// The species that can be absent while all others are present.
+    pub(super) fn free(&self) -> Vec<usize> {
+        (0..self.vanishes.len()).filter(|&i| self.vanishes[i] && self.reaches_zero[i]).collect()
+    }
+
+    /// The face on which, of the species that can be absent, just those are present that are wanted and may be; of a walk
+    /// that has not begun.
+    pub(super) fn leaf(&self, graph: &mut Graph, wanted: &[bool]) -> Option<Face> {
+        let mut part = self.stack.first()?.clone();
+        while let Some(i) = self.branch(graph, &part) {
+            if part.rows[i].is_some() && (wanted[i] || !self.reaches_zero[i]) {
+                part.decisions[i] = Decision::Present;
+            } else if self.reaches_zero[i] {
+                part = without(graph, part, i);
+            } else {
+                return None;
+            }
+        }
+        leaf(&part)
+    }
+
     /// Divides the walk into at least `wanted` walks, if there are so many faces; together, and in this order, they see
     /// every face.
     pub(super) fn divide(mut self, graph: &mut Graph, wanted: usize) -> Vec<Self> {

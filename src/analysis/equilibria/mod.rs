@@ -6,11 +6,13 @@
 
 mod above;
 mod border;
+mod choose;
 mod faces;
 pub mod linear;
 mod newton;
 mod remains;
 mod search;
+pub mod starts;
 
 use std::sync::OnceLock;
 
@@ -22,6 +24,7 @@ use faces::{Face, Faces};
 use newton::Region;
 use search::{Limits, Search};
 
+pub use choose::all;
 pub use remains::{Probably, Unresolved};
 
 /// Whether the rates have a derivative at an equilibrium.
