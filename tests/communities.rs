@@ -1,34 +1,20 @@
 //! Lotka–Volterra communities: recognised however they are written; every equilibrium found and proved, against exact
 //! rational arithmetic; the assemblies that pivoting finds, against all that there are.
+#![allow(clippy::panic, clippy::unwrap_used, clippy::expect_used, reason = "a test fails by panicking")]
 
 mod common;
 
 use common::Source;
 use common::cases::named;
 use common::text::{ModelText, Read};
+use common::workers::Two;
 use restpoint::analysis::equilibria::linear::{Affine, Assembly, assemble, find, recognise};
 use restpoint::analysis::equilibria::{
-    Budget, Equilibria, Equilibrium, OneByOne, Probably, Problem, Workers, balance, find as search,
+    Budget, Equilibria, Equilibrium, OneByOne, Probably, Problem, balance, find as search,
 };
 use restpoint::num::interval::Interval;
 
 const BUDGET: Budget<'_> = Budget { boxes: 50_000, stop: &|| false, workers: &OneByOne };
-
-/// Two threads, in whatever order they come.
-struct Two;
-
-impl Workers for Two {
-    fn count(&self) -> usize {
-        2
-    }
-
-    fn run(&self, jobs: usize, job: &(dyn Fn(usize) + Sync)) {
-        std::thread::scope(|scope| {
-            scope.spawn(|| (0..jobs).rev().step_by(2).for_each(job));
-            (0..jobs).rev().skip(1).step_by(2).for_each(job);
-        });
-    }
-}
 
 /// A community of whole numbers, which f64 holds exactly.
 struct Whole {
@@ -376,7 +362,7 @@ fn is_stable(community: &Affine, state: &[f64]) -> bool {
     let shifted = |sign: f64| -> Vec<f64> {
         jacobian.iter().enumerate().map(|(k, x)| f64::from(u8::from(k / n == k % n)) + sign * x / size).collect()
     };
-    let inverse = restpoint::num::dense::inverse(&shifted(-1.0), n).expect("regular");
+    let Some(inverse) = restpoint::num::dense::inverse(&shifted(-1.0), n) else { panic!("{state:?}") };
     let mut power = times(&shifted(1.0), &inverse, n);
     for _ in 0..40 {
         power = times(&power, &power, n);

@@ -212,8 +212,7 @@ mod tests {
         // The first keeps the second out: z₁ = 4, w₂ = −1 + 4.
         check(&[-4.0, -1.0], &[1.0, 0.0, 1.0, 1.0], Some(&[4.0, 0.0]));
         // All tied, solution by symmetry: 3 z = 1.
-        let ones = vec![1.0; 9];
-        let tied: Vec<f64> = ones.iter().enumerate().map(|(k, one)| if k % 4 == 0 { 2.0 * one } else { 0.5 }).collect();
+        let tied: Vec<f64> = (0..9).map(|k| if k % 4 == 0 { 2.0 } else { 0.5 }).collect();
         check(&[-1.0; 3], &tied, Some(&[1.0 / 3.0; 3]));
         // Predator (second) lives on prey: z₁ + z₂ = 3, z₁ = 1.
         check(&[-3.0, 1.0], &[1.0, 1.0, -1.0, 0.0], Some(&[1.0, 2.0]));

@@ -275,6 +275,31 @@ mod tests {
         assert_eq!(solve(&[Interval::new(-1.0, 3.0)], &[Interval::ONE], &|| false), None);
     }
 
+    /// Whole x, and A and A x in steps of 1/1024: exact, and somewhere between bounds that are at most two steps apart.
+    #[test]
+    fn every_system_between_the_bounds_has_its_solution_enclosed() {
+        let mut source = crate::num::random::Source::new(7);
+        let mut solved = 0;
+        for seed in 0..300 {
+            let n = 1 + seed % 9;
+            let step = 1.0 / 1024.0;
+            let x: Vec<f64> = (0..n).map(|_| source.between(-20.0, 20.0).round()).collect();
+            let matrix: Vec<f64> = (0..n * n).map(|_| source.between(-1024.0, 1024.0).round() * step).collect();
+            let right = product(&matrix, &x);
+            let mut around = |value: f64| {
+                let [below, above] = [source.unit().round() * step, source.unit().round() * step];
+                Interval::new(value - below, value + above)
+            };
+            let (bounds, rights): (Vec<_>, Vec<_>) =
+                (matrix.iter().map(|&a| around(a)).collect(), right.iter().map(|&b| Interval::point(b)).collect());
+            if let Some(found) = solve(&bounds, &rights, &|| false) {
+                solved += 1;
+                assert!(found.iter().zip(&x).all(|(side, &x)| side.contains(x)), "seed {seed}: {found:?} {x:?}");
+            }
+        }
+        assert!(solved > 250, "{solved}");
+    }
+
     /// Hilbert's matrix times the least common denominator has whole entries; with b its row sums, x is all ones.
     #[test]
     fn ill_conditioned_solutions_are_as_narrow_as_well_conditioned_ones() {

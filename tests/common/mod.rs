@@ -5,6 +5,7 @@
 pub mod cases;
 pub mod families;
 pub mod text;
+pub mod workers;
 
 use restpoint::expr::graph::{Graph, NodeId};
 use restpoint::expr::parse::parse;

@@ -9,7 +9,7 @@ mod descent;
 mod face;
 mod survivors;
 
-use std::collections::BTreeSet;
+use std::collections::{BTreeMap, BTreeSet};
 use std::sync::OnceLock;
 
 use super::border;
@@ -152,16 +152,18 @@ impl All<'_> {
     /// The places whose faces were not seen yet, each once, with the starting points of all that lead to it.
     fn distinct(&mut self, places: Vec<Place>) -> Vec<Place> {
         let faces = self.each(places.len(), |graph, k| self.faces.leaf(graph, &places[k].wanted));
-        let mut distinct: Vec<(Vec<usize>, Place)> = Vec::new();
+        let mut distinct: Vec<Place> = Vec::new();
+        let mut position: BTreeMap<Vec<usize>, usize> = BTreeMap::new();
         for (face, place) in faces.into_iter().zip(places) {
             let Some(variables) = face.map(|face| face.variables) else { continue };
-            match distinct.iter_mut().find(|(known, _)| *known == variables) {
-                Some((_, known)) => known.given.extend(place.given),
-                None if self.seen.insert(variables.clone()) => distinct.push((variables, place)),
-                None => {}
+            if let Some(&known) = position.get(&variables) {
+                distinct[known].given.extend(place.given);
+            } else if self.seen.insert(variables.clone()) {
+                position.insert(variables, distinct.len());
+                distinct.push(place);
             }
         }
-        distinct.into_iter().map(|(_, place)| place).collect()
+        distinct
     }
 
     fn hunt_at(&mut self, places: &[Place], starts: usize) {
