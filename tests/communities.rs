@@ -1,5 +1,5 @@
 //! Lotka–Volterra communities: recognised however they are written; every equilibrium found and proved, against exact
-//! rational arithmetic; the assemblies that pivoting finds, against all that there are.
+//! rational arithmetic, the published eleven groups, and the search for general rates.
 #![allow(clippy::panic, clippy::unwrap_used, clippy::expect_used, reason = "a test fails by panicking")]
 
 mod common;
@@ -7,103 +7,15 @@ mod common;
 use common::Source;
 use common::cases::named;
 use common::text::{ModelText, Read};
+use common::whole::{Whole, present};
 use common::workers::Two;
-use restpoint::analysis::equilibria::linear::{Affine, Assembly, assemble, find, recognise};
+use restpoint::analysis::equilibria::linear::{Affine, find, recognise};
 use restpoint::analysis::equilibria::{
     Budget, Equilibria, Equilibrium, OneByOne, Probably, Problem, balance, find as search,
 };
 use restpoint::num::interval::Interval;
 
 const BUDGET: Budget<'_> = Budget { boxes: 50_000, stop: &|| false, workers: &OneByOne };
-
-/// A community of whole numbers, which f64 holds exactly.
-struct Whole {
-    growth: Vec<i64>,
-    matrix: Vec<i64>,
-}
-
-impl Whole {
-    /// Effects on others from `low` to `high`, effects on oneself from `−limit` to −1, and growth: of many sizes where only
-    /// competition holds it down, else from `low` or −2 to `high`.
-    fn random(source: &mut Source, n: usize, [low, high]: [i64; 2], limit: i64) -> Self {
-        let mut number = |low: i64, high: i64| low + (source.unit() * (high - low + 1) as f64) as i64;
-        let growth = (0..n).map(|_| if high == 0 { number(20, 40) } else { number(low.max(-2), high) }).collect();
-        let entry = |k: usize| if k / n == k % n { -number(1, limit) } else { number(low, high) };
-        Self { growth, matrix: (0..n * n).map(entry).collect() }
-    }
-
-    fn n(&self) -> usize {
-        self.growth.len()
-    }
-
-    fn affine(&self) -> Affine {
-        let points = |numbers: &[i64]| numbers.iter().map(|&x| Interval::point(x as f64)).collect();
-        Affine { growth: points(&self.growth), matrix: points(&self.matrix) }
-    }
-
-    /// The same as a model, block and all.
-    fn text(&self) -> ModelText {
-        let n = self.n();
-        let row = |i: usize| {
-            let terms: Vec<String> = (0..n).map(|j| format!("({})*x{j}", self.matrix[i * n + j])).collect();
-            format!("x{i}*({} + {})", self.growth[i], terms.join(" + "))
-        };
-        let rows: Vec<(String, String)> = (0..n).map(|i| (format!("x{i}"), row(i))).collect();
-        let rows: Vec<(&str, &str)> = rows.iter().map(|(symbol, row)| (symbol.as_str(), row.as_str())).collect();
-        ModelText::new("whole numbers", "1000000", &rows)
-    }
-
-    /// Determinant of the matrix among those present, with the growth, times −1, in the place of one column if asked for.
-    fn determinant(&self, present: &[usize], replaced: Option<usize>) -> i128 {
-        let entry = |i: usize, j: usize| {
-            let value = if replaced == Some(j) { -self.growth[i] } else { self.matrix[i * self.n() + j] };
-            i128::from(value)
-        };
-        determinant(present.iter().map(|&i| present.iter().map(|&j| entry(i, j)).collect()).collect())
-    }
-
-    /// The exact solution on a face as numerators and a positive denominator (Cramer 1750); `None` where it is singular.
-    fn solution(&self, present: &[usize]) -> Option<(Vec<i128>, i128)> {
-        let denominator = self.determinant(present, None);
-        let numerators = present.iter().map(|&j| self.determinant(present, Some(j)) * denominator.signum()).collect();
-        (denominator != 0).then_some((numerators, denominator.abs()))
-    }
-
-    /// Numerator of the growth per head of an absent species.
-    fn rate(&self, species: usize, present: &[usize], (numerators, denominator): &(Vec<i128>, i128)) -> i128 {
-        let terms = present.iter().zip(numerators).map(|(&j, x)| i128::from(self.matrix[species * self.n() + j]) * x);
-        i128::from(self.growth[species]) * denominator + terms.sum::<i128>()
-    }
-
-    fn faces(&self) -> impl Iterator<Item = Vec<usize>> {
-        let n = self.n();
-        (0..1usize << n).map(move |face| (0..n).filter(|i| face >> i & 1 == 1).collect())
-    }
-}
-
-/// By fraction-free elimination (Bareiss 1968): exact.
-fn determinant(mut a: Vec<Vec<i128>>) -> i128 {
-    let n = a.len();
-    let (mut sign, mut before) = (1, 1);
-    for k in 0..n {
-        let Some(pivot) = (k..n).find(|&i| a[i][k] != 0) else { return 0 };
-        if pivot != k {
-            a.swap(pivot, k);
-            sign = -sign;
-        }
-        for i in k + 1..n {
-            for j in k + 1..n {
-                a[i][j] = (a[i][j] * a[k][k] - a[i][k] * a[k][j]) / before;
-            }
-        }
-        before = a[k][k];
-    }
-    sign * if n == 0 { 1 } else { a[n - 1][n - 1] }
-}
-
-fn present(equilibrium: &Equilibrium) -> Vec<usize> {
-    (0..equilibrium.state.len()).filter(|&i| equilibrium.has(i)).collect()
-}
 
 fn solve(community: &Affine, upper: f64) -> Equilibria {
     let sides = vec![[0.0, upper]; community.species()];
@@ -375,72 +287,4 @@ fn is_stable(community: &Affine, state: &[f64]) -> bool {
 
 fn times(a: &[f64], b: &[f64], n: usize) -> Vec<f64> {
     (0..n * n).map(|k| (0..n).map(|l| a[k / n * n + l] * b[l * n + k % n]).sum()).collect()
-}
-
-/// Every community that no absent species can invade, by exact fractions; `None` where one is degenerate.
-fn uninvadable(whole: &Whole) -> Option<Vec<Vec<usize>>> {
-    let mut found = Vec::new();
-    for face in whole.faces() {
-        let solution = whole.solution(&face)?;
-        let absent = (0..whole.n()).filter(|i| !face.contains(i));
-        let rates: Vec<i128> = absent.map(|i| whole.rate(i, &face, &solution)).collect();
-        if solution.0.iter().all(|&x| x >= 0) && rates.iter().all(|&rate| rate <= 0) {
-            if solution.0.contains(&0) || rates.contains(&0) {
-                return None;
-            }
-            found.push(face);
-        }
-    }
-    Some(found)
-}
-
-#[test]
-fn pivoting_ends_at_one_of_all_uninvadable_communities() {
-    let mut source = Source(4);
-    let (mut alone, mut among_several, mut rays) = (0, 0, 0);
-    for seed in 0..400 {
-        let n = 2 + seed % 8;
-        let whole = match seed % 3 {
-            // Competition, in which several may be uninvadable; feeding and competition; and the same, strongly limited.
-            0 => Whole::random(&mut source, n, [-40, 0], 25),
-            1 => Whole::random(&mut source, n, [-15, 12], 25),
-            _ => Whole::random(&mut source, n, [-2, 2], 30),
-        };
-        let Some(all) = uninvadable(&whole) else { continue };
-        match assemble(&whole.affine(), &vec![1.0; n], &|| false) {
-            Assembly::Found { equilibrium, uninvadable } => {
-                assert!(uninvadable && all.contains(&present(&equilibrium)), "seed {seed}: {equilibrium:?} of {all:?}");
-                if all.len() == 1 { alone += 1 } else { among_several += 1 }
-            }
-            Assembly::Ray => {
-                // All competing with all, the matrix is copositive, and a ray is impossible.
-                assert!(seed % 3 == 1 || (seed % 3 == 2 && n > 5), "seed {seed}: a ray");
-                rays += 1;
-            }
-            other => panic!("seed {seed}: {other:?}"),
-        }
-    }
-    assert!(alone > 200 && among_several > 50 && rays < 60, "{alone} {among_several} {rays}");
-}
-
-#[test]
-fn a_large_community_gets_its_assembly_and_says_what_is_not_proved() {
-    let mut source = Source(5);
-    let n = 40;
-    let growth = (0..n).map(|_| Interval::point(source.between(0.1, 1.0))).collect();
-    let entry = |k: usize| if k / n == k % n { -1.0 } else { source.between(-0.15, 0.05) };
-    let matrix = (0..n * n).map(entry).map(Interval::point).collect();
-    let community = Affine { growth, matrix };
-    let found = solve(&community, 1e3);
-    assert!(!found.complete && !found.none_above && found.unresolved.len() == 1);
-    assert_eq!(found.unresolved[0].probably, Probably::Budget);
-    assert!(found.unresolved[0].text.contains("2^40") && found.unresolved[0].text.contains("which is proved"));
-    // The empty state, and by diagonal dominance of the matrix the one and only assembly.
-    assert_eq!(found.list.len(), 2);
-    let state = &found.list[1].state;
-    for i in 0..n {
-        let rate =
-            community.growth[i].mid() + (0..n).map(|j| community.matrix[i * n + j].mid() * state[j]).sum::<f64>();
-        assert!(if state[i] > 0.0 { rate.abs() < 1e-14 } else { rate < 0.0 }, "{i}: {rate}");
-    }
 }

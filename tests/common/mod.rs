@@ -5,6 +5,7 @@
 pub mod cases;
 pub mod families;
 pub mod text;
+pub mod whole;
 pub mod workers;
 
 use restpoint::expr::graph::{Graph, NodeId};
