@@ -6,39 +6,60 @@
 /// # Panics
 /// If there are not n² entries.
 pub fn inverse(entries: &[f64], n: usize) -> Option<Vec<f64>> {
+    inverse_unless(entries, n, &|| false)
+}
+
+/// As [`inverse`]; `None` also where `stop`, asked once for each of the n columns, says so.
+///
+/// # Panics
+/// If there are not n² entries.
+pub fn inverse_unless(entries: &[f64], n: usize, stop: &dyn Fn() -> bool) -> Option<Vec<f64>> {
     assert_eq!(entries.len(), n * n, "entries of a matrix of order {n}");
     let mut a = entries.to_vec();
-    let mut b = vec![0.0; n * n];
-    for i in 0..n {
-        b[i * n + i] = 1.0;
-    }
+    let mut row = vec![0.0; n];
+    let mut exchanged = Vec::with_capacity(n);
     for k in 0..n {
         let pivot = (k..n).max_by(|&i, &j| a[i * n + k].abs().total_cmp(&a[j * n + k].abs()))?;
-        if pivot != k {
-            for j in 0..n {
-                a.swap(k * n + j, pivot * n + j);
-                b.swap(k * n + j, pivot * n + j);
-            }
-        }
-        let scale = 1.0 / a[k * n + k];
-        if !scale.is_finite() || scale == 0.0 {
+        let scale = 1.0 / a[pivot * n + k];
+        if !scale.is_finite() || scale == 0.0 || stop() {
             return None;
         }
-        for j in 0..n {
-            a[k * n + j] *= scale;
-            b[k * n + j] *= scale;
-        }
-        for i in (0..n).filter(|&i| i != k) {
-            let factor = a[i * n + k];
-            if factor != 0.0 {
-                for j in 0..n {
-                    a[i * n + j] -= factor * a[k * n + j];
-                    b[i * n + j] -= factor * b[k * n + j];
-                }
+        swap_rows(&mut a, n, k, pivot);
+        exchanged.push(pivot);
+        // In place: the column that becomes a unit vector gives room for the inverse's.
+        a[k * n + k] = 1.0;
+        a[k * n..(k + 1) * n].iter_mut().for_each(|x| *x *= scale);
+        row.copy_from_slice(&a[k * n..(k + 1) * n]);
+        for (i, other) in a.chunks_exact_mut(n).enumerate() {
+            let factor = other[k];
+            if i != k && factor != 0.0 {
+                other[k] = 0.0;
+                add_multiple(other, -factor, &row);
             }
         }
     }
-    b.iter().all(|x| x.is_finite()).then_some(b)
+    for (k, &pivot) in exchanged.iter().enumerate().rev() {
+        if pivot != k {
+            a.chunks_exact_mut(n).for_each(|row| row.swap(k, pivot));
+        }
+    }
+    a.iter().all(|x| x.is_finite()).then_some(a)
+}
+
+/// y + c x in place of y.
+pub fn add_multiple(y: &mut [f64], c: f64, x: &[f64]) {
+    for (y, x) in y.iter_mut().zip(x) {
+        *y += c * x;
+    }
+}
+
+/// Exchanges two rows of a matrix with `width` columns.
+pub fn swap_rows(entries: &mut [f64], width: usize, i: usize, j: usize) {
+    if i != j {
+        let (low, high) = (i.min(j), i.max(j));
+        let (before, after) = entries.split_at_mut(high * width);
+        before[low * width..(low + 1) * width].swap_with_slice(&mut after[..width]);
+    }
 }
 
 #[cfg(test)]

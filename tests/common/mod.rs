@@ -7,6 +7,8 @@ pub mod families;
 pub mod newton;
 pub mod solve;
 pub mod text;
+pub mod whole;
+pub mod workers;
 
 use restpoint::expr::graph::{Graph, NodeId};
 use restpoint::expr::parse::parse;

@@ -10,13 +10,13 @@ use crate::expr::graph::{Graph, NodeId};
 
 /// One face: the equations of those present.
 #[derive(Clone, Debug, PartialEq, Eq)]
-pub struct Face {
+pub(super) struct Face {
     /// The species that may be present, in order; all others are absent.
-    pub variables: Vec<usize>,
+    pub(super) variables: Vec<usize>,
     /// One row for each of them.
-    pub rows: Vec<NodeId>,
+    pub(super) rows: Vec<NodeId>,
     /// Whether that row is the rate divided by the abundance, so that its zero is not the one at absence.
-    pub divided: Vec<bool>,
+    pub(super) divided: Vec<bool>,
 }
 
 /// Walks over the faces of some rows.
@@ -72,6 +72,27 @@ impl Faces {
             }
         }
         None
+    }
+
+    /// The species that can be absent while all others are present.
+    pub(super) fn free(&self) -> Vec<usize> {
+        (0..self.vanishes.len()).filter(|&i| self.vanishes[i] && self.reaches_zero[i]).collect()
+    }
+
+    /// The face on which, of the species that can be absent, just those are present that are wanted and may be; of a walk
+    /// that has not begun.
+    pub(super) fn leaf(&self, graph: &mut Graph, wanted: &[bool]) -> Option<Face> {
+        let mut part = self.stack.first()?.clone();
+        while let Some(i) = self.branch(graph, &part) {
+            if part.rows[i].is_some() && (wanted[i] || !self.reaches_zero[i]) {
+                part.decisions[i] = Decision::Present;
+            } else if self.reaches_zero[i] {
+                part = without(graph, part, i);
+            } else {
+                return None;
+            }
+        }
+        leaf(&part)
     }
 
     /// Divides the walk into at least `wanted` walks, if there are so many faces; together, and in this order, they see

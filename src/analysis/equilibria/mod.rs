@@ -7,11 +7,14 @@
 mod above;
 mod border;
 mod bordered;
+mod choose;
 mod cluster;
 mod faces;
+pub mod linear;
 mod newton;
 mod remains;
 mod search;
+pub mod starts;
 mod witness;
 
 use std::sync::OnceLock;
@@ -25,6 +28,7 @@ use newton::Region;
 use remains::Remains;
 use search::{Limits, Search};
 
+pub use choose::all;
 pub use remains::{Probably, Unresolved};
 
 /// Whether the rates have a derivative at an equilibrium.

@@ -49,6 +49,12 @@ pub struct Unresolved {
     pub witnesses: Vec<Vec<f64>>,
 }
 
+impl Unresolved {
+    pub(super) fn new(region: Region, probably: Probably, text: impl Into<String>) -> Self {
+        Self { region, probably, text: text.into(), witnesses: Vec::new() }
+    }
+}
+
 /// What is left of a face's search.
 #[derive(Debug, Default)]
 pub(super) struct Remains {
@@ -66,7 +72,11 @@ pub(super) fn look_again(tape: &Tape, values: &[f64], face: &Face, n: usize, fou
     let mut equations = Equations::new(tape, values, found.scale.clone());
     if found.stopped {
         let hull = hull_of(&found.open);
-        remains.unresolved.push(of(everywhere(&hull, face, n), Probably::Budget, budget_text(found.open.len())));
+        remains.unresolved.push(Unresolved::new(
+            everywhere(&hull, face, n),
+            Probably::Budget,
+            budget_text(found.open.len()),
+        ));
         return remains;
     }
     if !found.continuum.is_empty() && found.witnesses.is_continuum() {
@@ -80,19 +90,15 @@ pub(super) fn look_again(tape: &Tape, values: &[f64], face: &Face, n: usize, fou
             Heap::Roots(roots) => remains.roots.extend(roots),
             Heap::DoubleOrTwo => {
                 let text = "none, one double or two equilibria: closer together than numbers can tell".to_owned();
-                remains.unresolved.push(of(everywhere(&heap, face, n), Probably::DoubleRoot, text));
+                remains.unresolved.push(Unresolved::new(everywhere(&heap, face, n), Probably::DoubleRoot, text));
             }
             Heap::Undecided => {
                 let (probably, text) = guess(&mut equations, &heap);
-                remains.unresolved.push(of(everywhere(&heap, face, n), probably, text));
+                remains.unresolved.push(Unresolved::new(everywhere(&heap, face, n), probably, text));
             }
         }
     }
     remains
-}
-
-fn of(region: Region, probably: Probably, text: String) -> Unresolved {
-    Unresolved { region, probably, text, witnesses: Vec::new() }
 }
 
 fn budget_text(boxes: usize) -> String {
@@ -113,7 +119,7 @@ fn continuum(boxes: &[Region], face: &Face, n: usize, found: &Found) -> Unresolv
     };
     let witnesses = found.witnesses.seen.iter().take(SHOWN).map(|witness| at(&witness.point)).collect();
     let text = format!("probably {shape} of equilibria: they are not isolated");
-    Unresolved { witnesses, ..of(everywhere(&hull_of(boxes), face, n), Probably::Continuum, text) }
+    Unresolved { witnesses, ..Unresolved::new(everywhere(&hull_of(boxes), face, n), Probably::Continuum, text) }
 }
 
 /// What a heap is that the bordered equations could not decide.
