@@ -5,7 +5,7 @@ mod common;
 use std::collections::BTreeSet;
 
 use common::Source;
-use common::families::{Family, examples, linear, patches, webs};
+use common::families::{Family, examples, linear, patches, scaled, webs, widened};
 use common::newton::{Newton, inverse};
 use common::text::{Evaluation, Point, Read};
 use restpoint::num::interval::Interval;
@@ -144,6 +144,15 @@ fn lotka_volterra_systems_of_hundreds_of_seeds_have_the_roots_that_they_name() {
 }
 
 #[test]
+fn other_units_and_larger_boxes_compose() {
+    let family = linear::lotka_volterra(2, 1);
+    let upper = |family: &Family| family.text.read().model.species.iter().map(|s| s.upper).collect::<Vec<_>>();
+    let [plain, changed] = [upper(&family), upper(&widened(&scaled(&family, &[6, -6]), 1000.0))];
+    let times = |side: Option<f64>, factor: f64| side.map(|side| side * factor);
+    assert_eq!(changed, [times(plain[0], 1e9), times(plain[1], 1e-3)]);
+}
+
+#[test]
 fn a_block_has_the_equations_of_its_formulas() {
     let (rows, block) = (linear::lotka_volterra(4, 2), linear::lotka_volterra_block(4, 2));
     let point: Point = [0.3, 0.0, 1.7, 2.0].map(Interval::point).into();
@@ -196,11 +205,13 @@ fn no_search_from_many_starts_finds_an_equilibrium_that_is_not_listed() {
         let bounds = read.system.bounds(&read.model).expect("bounds");
         let tape = read.system.plans[0].tape(&read.system.graph);
         let mut newton = Newton::new(&read, 0, &tape);
-        for _ in 0..100 {
-            let start = bounds.iter().map(|bound| bound.upper * source.unit().powi(3)).collect();
+        for k in 0..150 {
+            // Every third start is far above the box, where there should be nothing.
+            let above = if k % 3 == 0 { 1000.0 } else { 1.0 };
+            let start = bounds.iter().map(|bound| above * bound.upper * source.unit().powi(3)).collect();
             let Some(x) = newton.settles(start) else { continue };
             let scale = |i: usize| 1e-6 * bounds[i].upper;
-            if (0..x.len()).any(|i| x[i] < -1e-3 * scale(i) || x[i] > bounds[i].upper) {
+            if (0..x.len()).any(|i| x[i] < -1e-3 * scale(i)) {
                 continue;
             }
             let near = |point: &Point, within: f64| {

@@ -5,7 +5,7 @@
 //! families, one idea a file: `linear` Lotka–Volterra systems by exact elimination, `placed` polynomial systems with roots
 //! put where we want them, `folds` pairs about to merge and merged ones, `continua` lines and planes, `patches`
 //! communities with all 3ⁿ roots, `webs` random food webs without known roots, `textbook` small models of ecology.
-//! [`scaled`] changes the units of any of them. [`examples`] has one or more of each, under distinct names. To add one:
+//! [`scaled`] changes the units of any of them, [`widened`] the search box. [`examples`] has one or more of each, under distinct names. To add one:
 //! write it in the sibling that fits, add it to [`examples`], and the tests of `tests/families.rs` hold it to its word.
 
 use super::Source;
@@ -32,7 +32,7 @@ pub struct Family {
     /// Equilibria by continuity alone: a row or slope is not defined there.
     pub corners: Vec<Point>,
     pub continua: Vec<Continuum>,
-    /// Whether the box holds no equilibrium with no negative coordinate beyond those above.
+    /// Whether there is no equilibrium with no negative coordinate beyond those above, in the box or outside it.
     pub complete: bool,
 }
 
@@ -87,6 +87,15 @@ pub fn examples() -> Vec<Family> {
         .collect();
     all.extend(rescaled);
     all
+}
+
+/// The family in a box `factor` times as large.
+pub fn widened(family: &Family, factor: f64) -> Family {
+    let mut wide = Family { name: format!("{}, box times {factor}", family.name), ..family.clone() };
+    for (_, _, upper) in &mut wide.text.species {
+        *upper = (upper.parse::<f64>().unwrap() * factor).to_string();
+    }
+    wide
 }
 
 /// The family in other units: species i counted in units of 10^−exponents\[i\], each 0, 6 or −6.

@@ -32,6 +32,11 @@ pub(super) fn settle(graph: &mut Graph, face: &Face, root: &Proved, problem: &Pr
     if near_zero.is_empty() {
         return Some(Settled::Root(candidate(face, root, n)));
     }
+    if near_zero.iter().all(|&i| enclosure[i] == Interval::ZERO) {
+        // Exactly on the border. Where a divided rate vanishes, the face without the species has the same point.
+        let divided = face.variables.iter().zip(&face.divided).any(|(i, divided)| *divided && near_zero.contains(i));
+        return (!divided).then(|| Settled::Root(candidate(face, root, n)));
+    }
     match exact_zeros(graph, face, root, &near_zero, problem) {
         Some(proved) => Some(Settled::Root(proved)),
         None => Some(Settled::Open(Unresolved {

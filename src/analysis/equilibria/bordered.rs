@@ -14,6 +14,8 @@ use crate::num::singular::singular;
 
 /// Newton steps on the bordered equations at one t: they start within the tube, where convergence is quadratic.
 const STEPS: usize = 6;
+/// Rounds of sharpening the enclosure of a linear system's solution.
+const SHARPENINGS: usize = 12;
 /// Rounds of inflation around such a solution.
 const INFLATIONS: usize = 6;
 
@@ -53,19 +55,23 @@ impl<'e, 't> Bordered<'e, 't> {
         let n = equations.n;
         let centre: Vec<f64> = hull.iter().map(|side| side.mid()).collect();
         let slopes = equations.slopes_at(&centre);
-        let [u, v] = singular_vectors(&slopes, hull)?;
+        let over_heap = equations.linear(hull);
+        let [u, v] = singular_vectors(&slopes, &over_heap.slopes, hull)?;
         let inverse = inverse(&matrix(&slopes, &u, &v, 0.0), n + 1)?;
+        // A side that was cut to a point still needs room for the curve, as much as the widest has for its size.
+        let share = |(side, &c): (&Interval, &f64)| if c == 0.0 { 0.0 } else { side.width() / c.abs() };
+        let widest = hull.iter().zip(&centre).map(share).fold(1e-14, f64::max).min(1.0);
         let side = |(side, &c): (&Interval, &f64)| {
-            let r = (reach * side.width()).max(1e-14 * c.abs()).max(f64::MIN_POSITIVE);
+            let r = (reach * side.width().max(widest * c.abs())).max(f64::MIN_POSITIVE);
             Interval::point(c) + Interval::new(-r, r)
         };
         let mut tube: Vec<Interval> = hull.iter().zip(&centre).map(side).collect();
         let over = equations.linear(&tube);
-        // μ must be able to balance F over the whole tube, with some room.
-        let needed = (0..n)
-            .filter(|&i| u[i] != 0.0)
-            .map(|i| over.values[i].div(Interval::point(u[i]), &mut true).mag())
-            .fold(0.0, f64::max);
+        // μ must be able to balance F over the whole tube in the row that it moves most, with some room.
+        let weight =
+            |i: usize| u[i].abs() / (0..n).map(|j| over.slopes[i * n + j].mag()).fold(f64::MIN_POSITIVE, f64::max);
+        let row = (0..n).max_by(|&a, &b| weight(a).total_cmp(&weight(b)))?;
+        let needed = over.values[row].div(Interval::point(u[row]), &mut true).mag();
         let room = (4.0 * needed).max(f64::MIN_POSITIVE);
         tube.push(Interval::try_new(-room, room).filter(|side| side.is_bounded())?);
         let parameters = parameters.iter().map(|&p| Jet::constant(p)).collect();
@@ -127,8 +133,13 @@ impl<'e, 't> Bordered<'e, 't> {
     pub(super) fn slope_at(&mut self, t: f64) -> Option<Interval> {
         let (x, _) = self.at(t)?;
         let over = self.equations.linear(&x);
+        let centre: Vec<f64> = over.slopes.iter().map(|slope| slope.mid()).collect();
+        let here = inverse(&matrix(&centre, &self.u, &self.v, 0.0), self.equations.n + 1)?;
         let bordered = matrix(&over.slopes, &points(&self.u), &points(&self.v), Interval::ZERO);
-        self.solve(&bordered, &unit(self.equations.n))?.pop()
+        let at_centre = std::mem::replace(&mut self.inverse, here);
+        let solution = self.solve(&bordered, &unit(self.equations.n));
+        self.inverse = at_centre;
+        solution?.pop()
     }
 
     fn enclose(&mut self, x: &[f64], mu: f64, t: f64) -> Option<(Region, Interval)> {
@@ -210,16 +221,25 @@ impl<'e, 't> Bordered<'e, 't> {
         }
         // q/(1 − q) ≤ 2q, rounded up with a margin.
         let room = |i: usize| 2.0 * q * weight[i] * (1.0 + 8.0 * f64::EPSILON);
-        Some((0..m).map(|i| shift[i] + Interval::new(-room(i), room(i))).collect())
+        let mut y: Vec<Interval> = (0..m).map(|i| shift[i] + Interval::new(-room(i), room(i))).collect();
+        // Every solution satisfies y = C r + (I − C M) y, which cuts what the norms overestimate.
+        for _ in 0..SHARPENINGS {
+            for i in 0..m {
+                let image = (0..m).fold(shift[i], |sum, j| sum + defect[i * m + j] * y[j]);
+                y[i] = y[i].intersect(image);
+            }
+        }
+        Some(y)
     }
 }
 
-/// The left and right singular vectors of the smallest singular value, with rows and columns scaled to a like size.
-fn singular_vectors(slopes: &[f64], hull: &[Interval]) -> Option<[Vec<f64>; 2]> {
+/// The left and right singular vectors of the smallest singular value, with rows and columns scaled to a like size: that
+/// of the slopes over the heap, since those at its centre may all be 0.
+fn singular_vectors(slopes: &[f64], over: &[Interval], hull: &[Interval]) -> Option<[Vec<f64>; 2]> {
     let n = hull.len();
     let scale: Vec<f64> = hull.iter().map(|side| side.mag().max(f64::MIN_POSITIVE)).collect();
-    let size = |i: usize| (0..n).map(|j| (slopes[i * n + j] * scale[j]).abs()).fold(f64::MIN_POSITIVE, f64::max);
-    let rows: Vec<f64> = (0..n).map(size).collect();
+    let size = |i: usize| (0..n).map(|j| over[i * n + j].mag() * scale[j]).fold(0.0, f64::max);
+    let rows: Vec<f64> = (0..n).map(size).map(|size| if size > 0.0 { size } else { 1.0 }).collect();
     let scaled: Vec<f64> = (0..n * n).map(|k| slopes[k] * scale[k % n] / rows[k / n]).collect();
     let parts = singular(&scaled, n)?;
     let u = (0..n).map(|i| parts.left[i * n + n - 1] * rows[i]).collect();

@@ -21,7 +21,7 @@ pub(super) enum Heap {
 }
 
 /// How far the tube reaches beyond the heap, in its own size; one after the other is tried.
-const REACHES: [f64; 3] = [2.0, 8.0, 64.0];
+const REACHES: [f64; 3] = [4.0, 16.0, 128.0];
 /// Halvings of the interval of t on the way to the turning point and to each root.
 const HALVINGS: usize = 60;
 
@@ -29,7 +29,9 @@ const HALVINGS: usize = 60;
 pub(super) fn decide<'t>(equations: &mut Equations<'t>, tape: &'t Tape, parameters: &[f64], hull: &[Interval]) -> Heap {
     for reach in REACHES {
         let Some(mut bordered) = Bordered::around(equations, tape, parameters, hull, reach) else { continue };
-        let t = bordered.along(hull);
+        // Wider than the heap, so that a root at its end lies inside.
+        let heap = bordered.along(hull);
+        let t = heap + Interval::new(-heap.width(), heap.width());
         if !bordered.is_regular(t) {
             continue;
         }

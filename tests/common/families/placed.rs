@@ -106,7 +106,7 @@ impl Curve {
 /// A circle times chords of another, and the other times chords of the first, then mixed: circle meets circle, circle
 /// meets chord and chord meets chord at known points, and nothing else is a root.
 ///
-/// Draws in which a root is not simple or lies on the box's border are drawn again.
+/// Draws in which a root is not simple, or lies on an axis or above the box, are drawn again.
 pub fn lines_and_circles(seed: u64) -> Family {
     let mut source = Source(seed);
     let name = format!("lines and circles, seed {seed}");
@@ -142,9 +142,10 @@ fn draw(source: &mut Source) -> Option<(Curves, Vec<Rational>)> {
     let second = [vec![Curve::Circle(second.0, second.1)], of_first].concat();
     let once = |curves: &[Curve], p: Rational| curves.iter().filter(|curve| curve.at(p) == 0).count() == 1;
     let simple = points.iter().all(|&p| once(&first, p) && once(&second, p));
-    let on_border = points.iter().any(|p| [0, 32 * p.q].iter().any(|side| [p.x, p.y].contains(side)));
-    points.retain(|p| [p.x, p.y].iter().all(|&z| 0 < z && z < 32 * p.q));
-    (simple && !on_border).then_some(([first, second], points))
+    let on_axis = points.iter().any(|p| p.x == 0 || p.y == 0);
+    points.retain(|p| p.x > 0 && p.y > 0);
+    let outside = points.iter().any(|p| p.x.max(p.y) >= 32 * p.q);
+    (simple && !on_axis && !outside).then_some(([first, second], points))
 }
 
 /// Where two lines meet; nowhere where they are parallel.
