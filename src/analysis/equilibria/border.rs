@@ -2,7 +2,7 @@
 //! the rates have no derivative.
 
 use super::faces::Face;
-use super::newton::{Equations, Proved, Region};
+use super::newton::{Equations, Proved};
 use super::{Candidate, Derivative, Equilibrium, Probably, Problem, Unresolved, everywhere};
 use crate::expr::graph::divide::AtZero;
 use crate::expr::graph::{Graph, NodeId};

@@ -10,7 +10,7 @@ use crate::expr::graph::{Graph, NodeId};
 
 /// One face: the equations of those present.
 #[derive(Clone, Debug, PartialEq, Eq)]
-pub struct Face {
+pub(super) struct Face {
     /// The species that may be present, in order; all others are absent.
     pub variables: Vec<usize>,
     /// One row for each of them.
