@@ -247,7 +247,9 @@ impl<'t> Equations<'t> {
                     return region;
                 }
             }
-            radius.iter_mut().for_each(|r| *r *= 0.5);
+            for r in &mut radius {
+                *r *= 0.5;
+            }
         }
         spread(point, &vec![0.0; n])
     }

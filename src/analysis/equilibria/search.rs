@@ -145,7 +145,9 @@ impl<'t> Search<'t> {
         }
         let proved = self.equations.prove(point, around);
         let found = proved.is_some();
-        proved.into_iter().for_each(|proved| self.keep(proved));
+        if let Some(proved) = proved {
+            self.keep(proved);
+        }
         found
     }
 
