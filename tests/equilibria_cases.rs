@@ -26,7 +26,7 @@ fn search(case: &Case) -> Vec<Equilibria> {
         let graph = &mut read.system.graph;
         let rows = balance(graph, &plan.rows, &read.model.time);
         let problem = Problem { rows: &rows, values: &plan.values, sides: &sides };
-        find(graph, &problem, &Budget { boxes: 50_000, stop: &|| false, workers: &OneByOne })
+        find(graph, &problem, &Budget { boxes: 50_000, stop: &|| false, workers: &OneByOne, observer: None })
     };
     plans.iter().map(solve).collect()
 }
