@@ -5,18 +5,21 @@ use std::sync::Mutex;
 use std::sync::atomic::{AtomicUsize, Ordering};
 use std::time::{Duration, Instant};
 
+use super::terminal;
 use crate::analysis::equilibria::Progress;
 
 /// Work shorter than this is not spoken of.
 const PATIENCE: Duration = Duration::from_millis(500);
 /// How long a line stays before it is replaced.
 const LASTING: Duration = Duration::from_millis(200);
-/// Room that the line takes at most, so that it never wraps.
+/// Room that the line takes at most.
 const ROOM: usize = 72;
 
 /// A line that counts.
 pub struct Meter {
     wanted: bool,
+    /// Columns; fewer than the terminal has, so that the line never wraps.
+    room: usize,
     start: Instant,
     faces: AtomicUsize,
     boxes: AtomicUsize,
@@ -29,6 +32,7 @@ impl Meter {
     pub fn start() -> Self {
         Self {
             wanted: io::stderr().is_terminal(),
+            room: ROOM.min(terminal::width_for_remarks().saturating_sub(1)),
             start: Instant::now(),
             faces: AtomicUsize::new(0),
             boxes: AtomicUsize::new(0),
@@ -52,22 +56,22 @@ impl Meter {
         if is_due {
             *written = Some(Instant::now());
             let (faces, boxes) = (self.faces.load(Ordering::Relaxed), self.boxes.load(Ordering::Relaxed));
-            put(&format!("searching: {faces} faces, {boxes} boxes, {} s", self.start.elapsed().as_secs()));
+            self.put(&format!("searching: {faces} faces, {boxes} boxes, {} s", self.start.elapsed().as_secs()));
         }
+    }
+
+    /// Writes over the line; with spaces rather than an erasing sequence, which not every terminal knows.
+    fn put(&self, text: &str) {
+        // With standard error gone there is nobody left to tell.
+        let _ = io::stderr().lock().write_all(format!("\r{text:0$.0$}", self.room).as_bytes());
     }
 }
 
 impl Drop for Meter {
     fn drop(&mut self) {
         if self.written.get_mut().is_ok_and(|written| written.is_some()) {
-            put("");
+            self.put("");
             let _ = io::stderr().write_all(b"\r");
         }
     }
-}
-
-/// Writes over the line; with spaces rather than an erasing sequence, which not every terminal knows.
-fn put(text: &str) {
-    // With standard error gone there is nobody left to tell.
-    let _ = io::stderr().lock().write_all(format!("\r{text:ROOM$.ROOM$}").as_bytes());
 }

@@ -70,7 +70,8 @@ fn heading(table: &Table<'_>, page: &Page) -> String {
     }
     text.push('\n');
     let mut entry = |title: &str, body: &str| text.push_str(&page.paragraph(&format!("  {title}"), body, ENTRIES));
-    entry("made by", &format!("{}, restpoint {}", table.command, env!("CARGO_PKG_VERSION")));
+    entry("program", concat!("restpoint ", env!("CARGO_PKG_VERSION")));
+    entry("command", table.command);
     entry("SHA-256", table.sha256);
     for (name, sha256) in table.tables {
         entry("", &format!("{sha256} {name}"));
@@ -125,7 +126,7 @@ fn scenario(table: &Table<'_>, scene: &Scene, solved: &Solved, ids: &[String], p
     text.push_str(&overlay(table.model, scene, solved, page));
     let (is_proof, verdict) = words::verdict(equilibria);
     let (word, ink) = if is_proof { ("proved", Ink::Proved) } else { ("NOT PROVED COMPLETE", Ink::Undecided) };
-    let line = page.paragraph(&format!("  {word}:"), &verdict, word.len() + 4);
+    let line = page.paragraph("", &format!("{word}: {verdict}"), 2);
     text.push_str(&line.replacen(word, &ink.paint(word, page), 1));
     if !equilibria.list.is_empty() {
         text.push('\n');
