@@ -3,9 +3,12 @@
 
 mod common;
 
+use common::Source;
 use common::cases::{Case, Equilibrium, all, named, type_word};
+use common::newton::Newton;
 use common::text::{Evaluation, Read};
 use restpoint::expr::tape::Tape;
+use restpoint::model::system::bounds::Bound;
 use restpoint::num::interval::Interval;
 
 /// How far around the published coordinates, relative to each: the decimals have 22 digits, but the parameters are the
@@ -93,6 +96,42 @@ fn slopes_are_the_published_ones() {
     assert_eq!(compared, 239);
 }
 
+/// A list that lacked an equilibrium would be found out here, if it is one that Newton's method reaches.
+#[test]
+fn no_search_from_many_starts_finds_an_equilibrium_that_is_not_published() {
+    let mut source = Source(1);
+    let mut reached = 0;
+    for case in all().iter().filter(|case| !case.facts.contains_key("continua")) {
+        let mut read = case.text().read();
+        let bounds = read.system.bounds(&read.model).expect("bounds");
+        for (scenario, equilibria) in case.lists().enumerate() {
+            let tape = read.system.plans[scenario].tape(&read.system.graph);
+            let mut newton = Newton::new(&read, scenario, &tape);
+            for _ in 0..100 {
+                let start = |bound: &Bound| bound.lower + (bound.upper - bound.lower) * source.unit().powi(2);
+                let Some(x) = newton.settles(bounds.iter().map(start).collect()) else { continue };
+                let inside = |(x, bound): (&f64, &Bound)| bound.lower - 1e-9 * bound.upper <= *x && *x <= bound.upper;
+                if !x.iter().zip(&bounds).all(inside) {
+                    continue;
+                }
+                let near = |e: &&Equilibrium| {
+                    // Newton's method comes no nearer to a degenerate root than a root of the rounding errors.
+                    let within = if e.counts[2] > 0 { 1e-4 } else { 1e-9 };
+                    e.x.iter().zip(&x).zip(&bounds).all(|((e, x), bound)| (e - x).abs() <= within * bound.upper)
+                };
+                assert!(
+                    equilibria.iter().any(|e| near(&e)),
+                    "{} {}: {x:?}",
+                    case.id,
+                    read.model.scenarios[scenario].name
+                );
+                reached += 1;
+            }
+        }
+    }
+    assert!(reached > 5000, "{reached}");
+}
+
 /// Σ λᵏ = tr Aᵏ for k = 1 … n, which determines the eigenvalues, without an eigenvalue routine. Differences are measured
 /// by tr |A|ᵏ, which no choice of units changes, and (1e-6)ᵏ where that is 0.
 #[test]
@@ -106,9 +145,11 @@ fn spectra_are_the_published_ones() {
         };
         let (a, sizes) = (slopes(|slope| slope), slopes(f64::abs));
         let (mut power, mut power_of_sizes) = (a.clone(), sizes.clone());
+        let mut floor = 1.0;
         for k in 1..=a.len() {
+            floor *= 1e-6;
             let sum: f64 = equilibrium.eigenvalues.iter().map(|&(re, im)| re_of_power(re, im, k)).sum();
-            let scale = trace(&power_of_sizes) + 1e-6_f64.powi(k as i32);
+            let scale = trace(&power_of_sizes) + floor;
             let far = (trace(&power) - sum).abs();
             assert!(far <= 1e-9 * scale, "{name}: tr A^{k} = {}, published {sum}", trace(&power));
             (power, power_of_sizes) = (product(&power, &a), product(&power_of_sizes, &sizes));

@@ -431,3 +431,25 @@ fn simplification_keeps_the_domain() {
     differ("x*x^-1", "1");
     differ("exp(ln(x))", "x");
 }
+
+/// Where both arguments of min merely touch, one branch has all values; the slope is still that of one side only.
+#[test]
+fn a_kink_touched_from_one_side_is_not_smooth() {
+    let mut graph = graph();
+    for (text, touching) in [("min(x, 2 - x)", 1.0), ("max(0, x - 1)", 1.0), ("abs(x - 1)", 1.0)] {
+        let f = node(&mut graph, text);
+        let tape = Tape::new(&graph, &[f]);
+        let parameters = [Interval::ONE; 4];
+        let mut run = tape.start_gradient(&parameters);
+        for (x, smooth) in [
+            (Interval::point(touching), false),
+            (Interval::new(touching - 0.5, touching), false),
+            (Interval::new(touching, touching + 0.5), false),
+            (Interval::new(touching - 0.5, touching - 0.25), true),
+            (Interval::new(touching + 0.25, touching + 0.5), true),
+        ] {
+            let domain = run.at(&[x, Interval::ONE, Interval::ONE]);
+            assert!(domain.defined && domain.smooth == smooth, "{text} on {x:?}: {domain:?}");
+        }
+    }
+}

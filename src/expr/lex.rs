@@ -1,4 +1,4 @@
-//! Formula text → tokens. Never fails: what it cannot read becomes a [`Token::Strange`].
+//! Formula text → tokens. Never fails: what it cannot read becomes a `Token::Strange`.
 
 use unicode_ident::{is_xid_continue, is_xid_start};
 use unicode_normalization::UnicodeNormalization;

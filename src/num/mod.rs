@@ -10,3 +10,4 @@ pub mod elementary;
 pub mod interval;
 pub mod quotient;
 pub mod round;
+pub mod singular;

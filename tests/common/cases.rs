@@ -72,8 +72,10 @@ pub fn type_word(linear_type: &str) -> &str {
             "centre"
         }
         "non-hyperbolic: multiplier -1, 1 unstable" => "unstable node",
-        "zero eigenvalue" | "double zero (nilpotent)" => "undecided",
-        "non-hyperbolic: 1 zero eigenvalue, 1 stable" | "non-hyperbolic: 1 zero eigenvalue, 2 stable" => "undecided",
+        "zero eigenvalue"
+        | "double zero (nilpotent)"
+        | "non-hyperbolic: 1 zero eigenvalue, 1 stable"
+        | "non-hyperbolic: 1 zero eigenvalue, 2 stable" => "undecided",
         same => same,
     }
 }
@@ -95,6 +97,7 @@ impl Case {
             parameters: pairs(&self.facts["parameters"]),
             shorthand: Vec::new(),
             rows: list(&self.facts["equations"]).iter().map(text).collect(),
+            block: None,
             counts,
             scenarios: self.scenarios.iter().map(|s| (s.name.clone(), s.values.clone())).collect(),
         }

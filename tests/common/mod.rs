@@ -4,6 +4,8 @@
 
 pub mod cases;
 pub mod families;
+pub mod newton;
+pub mod solve;
 pub mod text;
 
 use restpoint::expr::graph::{Graph, NodeId};

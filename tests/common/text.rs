@@ -24,8 +24,10 @@ pub struct ModelText {
     pub parameters: Vec<(String, String)>,
     /// Name and formula.
     pub shorthand: Vec<(String, String)>,
-    /// One formula a species.
+    /// One formula a species; or none.
     pub rows: Vec<String>,
+    /// A Lotka–Volterra block.
+    pub block: Option<String>,
     /// Name and formula of yields that the rows contain already, counted on the first species.
     pub counts: Vec<(String, String)>,
     /// Name, and new values. Where there is one, [`ModelText::read`] has the unchanged model first, as `base`.
@@ -65,6 +67,9 @@ impl ModelText {
         section(&mut yaml, "shorthand", &self.shorthand);
         let rows: Vec<_> = self.species.iter().map(|(symbol, ..)| symbol.clone()).zip(self.rows.clone()).collect();
         section(&mut yaml, if self.discrete { "next" } else { "change" }, &rows);
+        if let Some(block) = &self.block {
+            let _ = writeln!(yaml, "lotka_volterra: {block}");
+        }
         let counts = |(name, formula): &(String, String)| {
             (name.clone(), format!("{{counts: {{{}: {}}}}}", self.species[0].0, quoted(formula)))
         };

@@ -3,7 +3,7 @@
 
 use super::faces::Face;
 use super::newton::{Equations, Proved, Region};
-use super::{Candidate, Derivative, Equilibrium, Problem, everywhere};
+use super::{Candidate, Derivative, Equilibrium, Probably, Problem, Unresolved, everywhere};
 use crate::expr::graph::divide::AtZero;
 use crate::expr::graph::{Graph, NodeId};
 use crate::expr::tape::Tape;
@@ -14,7 +14,7 @@ pub(super) enum Settled {
     /// An equilibrium.
     Root(Candidate),
     /// A root that may or may not lie in the orthant.
-    Open(Region),
+    Open(Unresolved),
 }
 
 /// Takes a face's root for an equilibrium, unless it is outside the box; `None` where it is.
@@ -32,9 +32,19 @@ pub(super) fn settle(graph: &mut Graph, face: &Face, root: &Proved, problem: &Pr
     if near_zero.is_empty() {
         return Some(Settled::Root(candidate(face, root, n)));
     }
+    if near_zero.iter().all(|&i| enclosure[i] == Interval::ZERO) {
+        // Exactly on the border. Where a divided rate vanishes, the face without the species has the same point.
+        let divided = face.variables.iter().zip(&face.divided).any(|(i, divided)| *divided && near_zero.contains(i));
+        return (!divided).then(|| Settled::Root(candidate(face, root, n)));
+    }
     match exact_zeros(graph, face, root, &near_zero, problem) {
         Some(proved) => Some(Settled::Root(proved)),
-        None => Some(Settled::Open(enclosure)),
+        None => Some(Settled::Open(Unresolved {
+            region: enclosure,
+            probably: Probably::DoubleRoot,
+            text: "an equilibrium on the border, or one beside it, or both: they are too close to be told apart".into(),
+            witnesses: Vec::new(),
+        })),
     }
 }
 

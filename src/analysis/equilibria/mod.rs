@@ -6,10 +6,13 @@
 
 mod above;
 mod border;
+mod bordered;
+mod cluster;
 mod faces;
 mod newton;
 mod remains;
 mod search;
+mod witness;
 
 use std::sync::OnceLock;
 
@@ -19,6 +22,7 @@ use crate::model::TimeKind;
 use crate::num::interval::Interval;
 use faces::{Face, Faces};
 use newton::Region;
+use remains::Remains;
 use search::{Limits, Search};
 
 pub use remains::{Probably, Unresolved};
@@ -199,8 +203,7 @@ fn at_once(walks: &[Faces], graph: &Graph, problem: &Problem<'_>, budget: &Budge
 /// What was found on the faces so far.
 struct Whole {
     candidates: Vec<Candidate>,
-    /// Open boxes by species, and whether the budget left them open.
-    open: Vec<(Region, bool)>,
+    unresolved: Vec<Unresolved>,
     boxes: usize,
     faces: usize,
     none_above: bool,
@@ -208,7 +211,7 @@ struct Whole {
 
 impl Whole {
     fn new() -> Self {
-        Self { candidates: Vec::new(), open: Vec::new(), boxes: 0, faces: 0, none_above: true }
+        Self { candidates: Vec::new(), unresolved: Vec::new(), boxes: 0, faces: 0, none_above: true }
     }
 
     /// Everything on the faces of a walk.
@@ -218,7 +221,13 @@ impl Whole {
             if (budget.stop)() {
                 // Whatever the walk had still to see may be anywhere in the box.
                 let whole_box = problem.sides.iter().map(|side| Interval::new(side[0], side[1])).collect();
-                whole.open.push((whole_box, true));
+                let text = "the budget ended before every face was looked at".to_owned();
+                whole.unresolved.push(Unresolved {
+                    region: whole_box,
+                    probably: Probably::Budget,
+                    text,
+                    witnesses: Vec::new(),
+                });
                 break;
             }
             whole.faces += 1;
@@ -229,7 +238,7 @@ impl Whole {
 
     fn and(mut self, other: Self) -> Self {
         self.candidates.extend(other.candidates);
-        self.open.extend(other.open);
+        self.unresolved.extend(other.unresolved);
         self.boxes += other.boxes;
         self.faces += other.faces;
         self.none_above &= other.none_above;
@@ -251,16 +260,18 @@ impl Whole {
         budget.tell(1, 0);
         self.boxes += found.boxes;
         self.none_above = self.none_above && above::is_empty(&tape, problem.values, &region);
-        for root in found.roots {
-            if let Some(settled) = border::settle(graph, face, &root, problem) {
-                match settled {
-                    border::Settled::Root(candidate) => self.candidates.push(candidate),
-                    border::Settled::Open(region) => self.open.push((region, false)),
-                }
+        let remains = if found.open.is_empty() && found.continuum.is_empty() {
+            Remains::default()
+        } else {
+            remains::look_again(&tape, problem.values, face, n, &found)
+        };
+        self.unresolved.extend(remains.unresolved);
+        for root in found.roots.iter().chain(&remains.roots) {
+            match border::settle(graph, face, root, problem) {
+                Some(border::Settled::Root(candidate)) => self.candidates.push(candidate),
+                Some(border::Settled::Open(unresolved)) => self.unresolved.push(unresolved),
+                None => {}
             }
-        }
-        for region in found.open {
-            self.open.push((everywhere(&region, face, n), found.stopped));
         }
     }
 
@@ -270,7 +281,7 @@ impl Whole {
         for candidate in &mut self.candidates {
             border::look_at_derivative(&tape, problem.values, &mut candidate.equilibrium);
         }
-        let unresolved = remains::explain(&tape, problem, &self.candidates, self.open);
+        let unresolved = self.unresolved;
         let mut list: Vec<Equilibrium> = self.candidates.into_iter().map(|candidate| candidate.equilibrium).collect();
         list.sort_by(order);
         let complete = unresolved.is_empty();

@@ -16,6 +16,9 @@ pub(super) type Region = Vec<Interval>;
 const STEPS: usize = 14;
 const LEASH: f64 = 3.0;
 
+/// Halvings of the region in which a root may be alone.
+const HALVINGS: usize = 48;
+
 /// Rounds of epsilon-inflation before a root is given up.
 const INFLATIONS: usize = 8;
 
@@ -42,10 +45,12 @@ pub(super) struct Proved {
 }
 
 /// Values and derivatives over a region.
-struct Linear {
-    values: Vec<Interval>,
-    slopes: Vec<Interval>,
-    domain: Domain,
+pub(super) struct Linear {
+    /// One a row.
+    pub(super) values: Vec<Interval>,
+    /// Row by row.
+    pub(super) slopes: Vec<Interval>,
+    pub(super) domain: Domain,
 }
 
 impl<'t> Equations<'t> {
@@ -59,7 +64,8 @@ impl<'t> Equations<'t> {
         }
     }
 
-    fn linear(&mut self, region: &[Interval]) -> Linear {
+    /// Values and derivatives over a region.
+    pub(super) fn linear(&mut self, region: &[Interval]) -> Linear {
         let domain = self.intervals.at(region);
         let n = self.n;
         let values = (0..n).map(|i| *self.intervals.output(i)).collect();
@@ -73,7 +79,8 @@ impl<'t> Equations<'t> {
         Linear { values, slopes, domain }
     }
 
-    fn slopes_at(&mut self, point: &[f64]) -> Vec<f64> {
+    /// The Jacobian at a point, row by row; the values are then there too.
+    pub(super) fn slopes_at(&mut self, point: &[f64]) -> Vec<f64> {
         self.numbers.at(point);
         let n = self.n;
         let mut slopes = Vec::with_capacity(n * n);
@@ -84,6 +91,11 @@ impl<'t> Equations<'t> {
             }
         }
         slopes
+    }
+
+    /// The values at the point last evaluated.
+    pub(super) fn values(&self) -> Vec<f64> {
+        (0..self.n).map(|i| *self.numbers.output(i)).collect()
     }
 
     /// An approximate root by Newton's method from `start`; with a leash, only where the iterates stay near that region.
@@ -139,6 +151,10 @@ impl<'t> Equations<'t> {
             (0..self.n).map(|i| (2.0 * shift[i].mag()).max(2.0 * f64::EPSILON * point[i].abs()).max(1e-300)).collect();
         for _ in 0..INFLATIONS {
             let region = spread(point, &radius);
+            // On an unbounded region being inside proves nothing.
+            if !region.iter().all(|side| side.is_bounded()) {
+                return None;
+            }
             let image = self.krawczyk(point, &shift, &inverse, &region)?;
             if image.iter().zip(&region).all(|(image, region)| image.interior_of(*region)) {
                 let smooth = self.linear(&image).domain.smooth;
@@ -207,17 +223,17 @@ impl<'t> Equations<'t> {
     }
 
     /// A large region around a point in which there is at most one root: C J strictly diagonally dominant, weighted by the
-    /// region's sides (then f is one-to-one there). Starts at twice the size of `around` and halves.
+    /// region's sides (then f is one-to-one there). Its sides are alike, each relative to its variable: a flat box would
+    /// weigh the dominance away. Starts at twice each variable's size and halves.
     fn alone(&mut self, point: &[f64], inverse: &[f64], around: &[Interval]) -> Region {
         let n = self.n;
-        let floor = |i: usize| 1e-13 * point[i].abs().max(1e-10 * self.scale[i]);
-        let mut radius: Vec<f64> = (0..n)
-            .map(|i| {
-                let reach = (around[i] - Interval::point(point[i])).mag();
-                if reach.is_finite() { (2.0 * reach).max(floor(i)) } else { 2.0 * point[i].abs().max(self.scale[i]) }
-            })
-            .collect();
-        for _ in 0..48 {
+        let size = |i: usize| {
+            let reach = (around[i] - Interval::point(point[i])).mag();
+            let reach = if reach.is_finite() { reach } else { self.scale[i] };
+            point[i].abs().max(reach).max(1e-10 * self.scale[i])
+        };
+        let mut radius: Vec<f64> = (0..n).map(|i| 2.0 * size(i)).collect();
+        for _ in 0..HALVINGS {
             let region = spread(point, &radius);
             let linear = self.linear(&region);
             if linear.domain.defined {
@@ -268,7 +284,7 @@ impl<'t> Equations<'t> {
             if new.is_empty() {
                 return Cut::Empty;
             }
-            inside &= second.is_none() && (at + first).interior_of(old);
+            inside &= second.is_none() && old.is_bounded() && (at + first).interior_of(old);
             region[i] = new;
         }
         Cut::Left { unique: inside, slopes: whole.slopes }

@@ -1,7 +1,10 @@
-//! What the boxes that stayed open probably are, in words.
+//! What the boxes that stayed open are: settled after all, or said to be open, and what they probably are.
 
-use super::newton::Region;
-use super::{Candidate, Problem};
+use super::cluster::{Heap, decide};
+use super::everywhere;
+use super::faces::Face;
+use super::newton::{Equations, Proved, Region};
+use super::search::Found;
 use crate::expr::tape::Tape;
 use crate::num::interval::Interval;
 
@@ -12,7 +15,7 @@ pub enum Probably {
     DoubleRoot,
     /// A line or surface of equilibria.
     Continuum,
-    /// The rates are not defined there: 0/0.
+    /// The rates are not defined, or not differentiable, there.
     NoDerivative,
     /// Two branches of min, max or abs meet at the root.
     Kink,
@@ -20,7 +23,20 @@ pub enum Probably {
     Budget,
 }
 
-/// A region about which nothing was decided.
+impl Probably {
+    /// The words for it.
+    pub fn words(self) -> &'static str {
+        match self {
+            Self::DoubleRoot => "double root",
+            Self::Continuum => "continuum",
+            Self::NoDerivative => "no derivative",
+            Self::Kink => "kink",
+            Self::Budget => "budget",
+        }
+    }
+}
+
+/// A region about which not all was decided.
 #[derive(Clone, Debug, PartialEq)]
 pub struct Unresolved {
     /// One interval a species.
@@ -29,48 +45,115 @@ pub struct Unresolved {
     pub probably: Probably,
     /// The same in a sentence.
     pub text: String,
+    /// Points of a continuum, a few.
+    pub witnesses: Vec<Vec<f64>>,
 }
 
-/// Gathers open boxes that touch, and says what each heap probably is.
-pub(super) fn explain(
-    tape: &Tape,
-    problem: &Problem<'_>,
-    candidates: &[Candidate],
-    open: Vec<(Region, bool)>,
-) -> Vec<Unresolved> {
-    let _ = candidates;
-    let exact: Vec<Interval> = problem.values.iter().map(|&value| Interval::point(value)).collect();
-    let mut run = tape.start_gradient(&exact);
-    let heap = |(region, stopped): (Region, bool)| {
-        let domain = run.at(&region);
-        let probably = if stopped {
-            Probably::Budget
-        } else if !domain.defined {
-            Probably::NoDerivative
-        } else if !domain.smooth {
-            Probably::Kink
-        } else {
-            Probably::DoubleRoot
-        };
-        Unresolved { text: String::new(), region, probably }
-    };
-    heaps(open).into_iter().map(heap).collect()
+/// What is left of a face's search.
+#[derive(Debug, Default)]
+pub(super) struct Remains {
+    /// Roots that were found in the heaps of open boxes.
+    pub(super) roots: Vec<Proved>,
+    pub(super) unresolved: Vec<Unresolved>,
 }
 
-/// The hulls of boxes that touch each other.
-fn heaps(open: Vec<(Region, bool)>) -> Vec<(Region, bool)> {
-    let mut heaps: Vec<(Region, bool)> = Vec::new();
-    for (mut region, mut stopped) in open {
-        while let Some(position) = heaps.iter().position(|(other, _)| touch(other, &region)) {
-            let (other, other_stopped) = heaps.swap_remove(position);
-            region = region.iter().zip(&other).map(|(a, b)| a.hull(*b)).collect();
-            stopped |= other_stopped;
+/// So many points of a continuum are shown.
+const SHOWN: usize = 3;
+
+/// Looks once more at what a face's search left open.
+pub(super) fn look_again(tape: &Tape, values: &[f64], face: &Face, n: usize, found: &Found) -> Remains {
+    let mut remains = Remains::default();
+    let mut equations = Equations::new(tape, values, found.scale.clone());
+    if found.stopped {
+        let hull = hull_of(&found.open);
+        remains.unresolved.push(of(everywhere(&hull, face, n), Probably::Budget, budget_text(found.open.len())));
+        return remains;
+    }
+    if !found.continuum.is_empty() && found.witnesses.is_continuum() {
+        let all: Vec<Region> = found.continuum.iter().chain(&found.open).cloned().collect();
+        remains.unresolved.push(continuum(&all, face, n, found));
+        return remains;
+    }
+    for heap in heaps(found.open.iter().chain(&found.continuum)) {
+        match decide(&mut equations, tape, values, &heap) {
+            Heap::Empty => {}
+            Heap::Roots(roots) => remains.roots.extend(roots),
+            Heap::DoubleOrTwo => {
+                let text = "none, one double or two equilibria: closer together than numbers can tell".to_owned();
+                remains.unresolved.push(of(everywhere(&heap, face, n), Probably::DoubleRoot, text));
+            }
+            Heap::Undecided => {
+                let (probably, text) = guess(&mut equations, &heap);
+                remains.unresolved.push(of(everywhere(&heap, face, n), probably, text));
+            }
         }
-        heaps.push((region, stopped));
+    }
+    remains
+}
+
+fn of(region: Region, probably: Probably, text: String) -> Unresolved {
+    Unresolved { region, probably, text, witnesses: Vec::new() }
+}
+
+fn budget_text(boxes: usize) -> String {
+    format!("the budget ended with {boxes} boxes not looked at")
+}
+
+fn continuum(boxes: &[Region], face: &Face, n: usize, found: &Found) -> Unresolved {
+    let dimension = found.witnesses.dimension();
+    let shape = match dimension {
+        1 => "a line".to_owned(),
+        2 => "a surface".to_owned(),
+        more => format!("a set of dimension {more}"),
+    };
+    let at = |point: &Vec<f64>| {
+        let mut state = vec![0.0; n];
+        face.variables.iter().zip(point).for_each(|(&i, &x)| state[i] = x);
+        state
+    };
+    let witnesses = found.witnesses.seen.iter().take(SHOWN).map(|witness| at(&witness.point)).collect();
+    let text = format!("probably {shape} of equilibria: they are not isolated");
+    Unresolved { witnesses, ..of(everywhere(&hull_of(boxes), face, n), Probably::Continuum, text) }
+}
+
+/// What a heap is that the bordered equations could not decide.
+fn guess(equations: &mut Equations<'_>, heap: &[Interval]) -> (Probably, String) {
+    let domain = equations.linear(heap).domain;
+    if !domain.defined {
+        (Probably::NoDerivative, "the rates are not defined, or have no derivative, in here".to_owned())
+    } else if !domain.smooth {
+        (Probably::Kink, "two branches of min, max, abs or ramp meet in here, at or beside a root".to_owned())
+    } else {
+        (Probably::DoubleRoot, "a degenerate equilibrium, or several, or none: it could not be decided".to_owned())
+    }
+}
+
+/// The hulls of boxes that touch each other, or nearly so.
+fn heaps<'b>(boxes: impl Iterator<Item = &'b Region>) -> Vec<Region> {
+    let mut heaps: Vec<Region> = Vec::new();
+    for region in boxes {
+        let mut region = region.clone();
+        while let Some(position) = heaps.iter().position(|other| nearly_touch(other, &region)) {
+            let other = heaps.swap_remove(position);
+            region = region.iter().zip(&other).map(|(a, b)| a.hull(*b)).collect();
+        }
+        heaps.push(region);
     }
     heaps
 }
 
-fn touch(a: &Region, b: &Region) -> bool {
-    a.iter().zip(b).all(|(a, b)| !a.intersect(*b).is_empty())
+/// Whether the gap between two boxes is no wider than the wider of them, on every side.
+fn nearly_touch(a: &Region, b: &Region) -> bool {
+    a.iter().zip(b).all(|(a, b)| {
+        let room = a.width().max(b.width()).max(f64::EPSILON * a.mag());
+        a.lo() - room <= b.hi() && b.lo() - room <= a.hi()
+    })
+}
+
+fn hull_of(boxes: &[Region]) -> Region {
+    let mut hull = boxes.first().cloned().unwrap_or_default();
+    for region in boxes {
+        hull.iter_mut().zip(region).for_each(|(hull, side)| *hull = hull.hull(*side));
+    }
+    hull
 }

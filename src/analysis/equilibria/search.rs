@@ -7,6 +7,7 @@
 use std::collections::VecDeque;
 
 use super::newton::{Cut, Equations, Proved, Region};
+use super::witness::Witnesses;
 use crate::expr::tape::Tape;
 use crate::expr::tape::propagate::{Propagation, Sweep};
 use crate::num::interval::Interval;
@@ -28,6 +29,12 @@ pub(super) struct Found {
     pub(super) roots: Vec<Proved>,
     /// Boxes about which nothing was decided.
     pub(super) open: Vec<Region>,
+    /// Boxes that lie on a continuum of equilibria.
+    pub(super) continuum: Vec<Region>,
+    /// Singular points met on the way.
+    pub(super) witnesses: Witnesses,
+    /// Size of each variable.
+    pub(super) scale: Vec<f64>,
     /// Boxes that were looked at.
     pub(super) boxes: usize,
     /// Whether the budget ended before the boxes did; what was left is among the open ones.
@@ -72,19 +79,23 @@ impl<'t> Search<'t> {
             search.found.boxes += 1;
             search.look_at(region);
         }
+        search.found.scale = search.equations.scale;
         search.found
     }
 
     fn look_at(&mut self, mut region: Region) {
         let Some(slopes) = self.cut(&mut region) else { return };
         let middle: Vec<f64> = region.iter().map(|side| side.mid()).collect();
+        let mut proved = false;
         if let Some(point) = self.equations.approximate(&middle, Some(&region)) {
-            self.try_to_prove(&point, &region);
+            proved = self.try_to_prove(&point, &region);
             if trim(&mut region, &self.found.roots) == Kept::Nothing {
                 return;
             }
         }
-        if self.is_smallest(&region) {
+        if !proved && self.found.witnesses.settles(&mut self.equations, &region) {
+            self.found.continuum.push(region);
+        } else if self.is_smallest(&region) {
             self.last_look(region);
         } else {
             self.halve(region, &slopes);
@@ -126,12 +137,16 @@ impl<'t> Search<'t> {
         true
     }
 
-    fn try_to_prove(&mut self, point: &[f64], around: &Region) {
-        let known =
-            self.found.roots.iter().any(|root| root.unique.iter().zip(point).all(|(side, &x)| side.contains(x)));
-        if !known && let Some(proved) = self.equations.prove(point, around) {
-            self.keep(proved);
+    /// Whether there is a proved root at the point, new or known.
+    fn try_to_prove(&mut self, point: &[f64], around: &Region) -> bool {
+        let inside = |root: &Proved| root.unique.iter().zip(point).all(|(side, &x)| side.contains(x));
+        if self.found.roots.iter().any(inside) {
+            return true;
         }
+        let proved = self.equations.prove(point, around);
+        let found = proved.is_some();
+        proved.into_iter().for_each(|proved| self.keep(proved));
+        found
     }
 
     fn keep(&mut self, proved: Proved) {

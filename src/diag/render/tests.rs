@@ -1,3 +1,5 @@
+//! Rendered messages, word for word: excerpt, caret, and places at the edges of a text.
+
 use proptest::prelude::*;
 
 use super::*;

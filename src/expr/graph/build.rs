@@ -147,10 +147,12 @@ impl Graph {
                 self.neg(product)
             }
             _ if a == b => self.powi(a, 2),
-            (Operation::PowInt(x, n), _) if x == b && n > 0 => self.powi(b, n.saturating_add(1)),
-            (_, Operation::PowInt(y, n)) if y == a && n > 0 => self.powi(a, n.saturating_add(1)),
-            (Operation::PowInt(x, n), Operation::PowInt(y, m)) if x == y && n > 0 && m > 0 => {
-                self.powi(x, n.saturating_add(m))
+            (Operation::PowInt(x, n), _) if x == b && (1..i32::MAX).contains(&n) => self.powi(b, n + 1),
+            (_, Operation::PowInt(y, n)) if y == a && (1..i32::MAX).contains(&n) => self.powi(a, n + 1),
+            (Operation::PowInt(x, n), Operation::PowInt(y, m))
+                if x == y && n > 0 && m > 0 && n.checked_add(m).is_some() =>
+            {
+                self.powi(x, n + m)
             }
             _ => self.intern(Operation::Mul(a, b)),
         }

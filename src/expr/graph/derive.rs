@@ -12,25 +12,35 @@ impl Graph {
     /// # Panics
     /// Beyond the third derivative of a quotient f(u)/u.
     pub fn derivative(&mut self, node: NodeId, variable: Variable) -> NodeId {
-        // Operands come first, so no recursion is needed, however deep the formula.
-        for inner in self.reachable(&[node]) {
-            if !self.derivatives.contains_key(&(inner, variable)) {
-                let derivative = self.derivative_of(inner, variable);
-                self.derivatives.insert((inner, variable), derivative);
-            }
+        if !self.derivatives.contains_key(&(node, variable)) {
+            let needed = self.reachable(&[node]);
+            self.derive(&needed, variable);
         }
-        self.derivatives[&(node, variable)]
+        self.known(node, variable)
     }
 
     /// The Jacobian of rows with respect to all states, row by row.
     pub fn jacobian(&mut self, rows: &[NodeId]) -> Vec<NodeId> {
         let mut entries = Vec::with_capacity(rows.len() * self.states);
         for &row in rows {
+            // Once a row, since finding out takes a walk over the whole graph.
+            let needed = self.reachable(&[row]);
             for i in 0..self.states {
-                entries.push(self.derivative(row, Variable::State(i)));
+                self.derive(&needed, Variable::State(i));
+                entries.push(self.known(row, Variable::State(i)));
             }
         }
         entries
+    }
+
+    /// The derivatives of all these; operands come first, so no recursion is needed, however deep the formula.
+    fn derive(&mut self, needed: &[NodeId], variable: Variable) {
+        for &inner in needed {
+            if !self.derivatives.contains_key(&(inner, variable)) {
+                let derivative = self.derivative_of(inner, variable);
+                self.derivatives.insert((inner, variable), derivative);
+            }
+        }
     }
 
     fn known(&self, node: NodeId, variable: Variable) -> NodeId {

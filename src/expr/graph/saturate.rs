@@ -13,6 +13,9 @@ type Factors = Vec<(NodeId, i32)>;
 /// No sum in a denominator has more terms than this looked at.
 const MOST_TERMS: usize = 64;
 
+/// No product has more factors than this looked at, shared ones counted each time.
+const MOST_FACTORS: usize = 256;
+
 impl Graph {
     /// num/den in saturation form, where it has one.
     pub(super) fn saturating(&mut self, num: NodeId, den: NodeId) -> Option<NodeId> {
@@ -20,12 +23,12 @@ impl Graph {
             return None;
         }
         let terms = self.terms(den)?;
-        let numerator = self.factors(num);
+        let numerator = self.factors(num)?;
         for (position, &(positive, term)) in terms.iter().enumerate() {
             if !positive {
                 continue;
             }
-            let (state_part, parameter_part) = self.split(term);
+            let (state_part, parameter_part) = self.split(term)?;
             if state_part.is_empty() {
                 continue;
             }
@@ -75,10 +78,14 @@ impl Graph {
     }
 
     /// The factors of a product, equal ones gathered; quotients by what does not depend on a state count as factors too.
-    fn factors(&self, product: NodeId) -> Factors {
+    /// `None` where there are too many to look at: a shorthand that uses another twice, and so on, has a factor for every
+    /// way down.
+    fn factors(&self, product: NodeId) -> Option<Factors> {
         let mut found: Factors = Vec::new();
         let mut stack = vec![(product, 1)];
+        let mut budget = MOST_FACTORS;
         while let Some((node, power)) = stack.pop() {
+            budget = budget.checked_sub(1)?;
             match self.operation(node) {
                 Operation::Mul(a, b) => stack.extend([(b, power), (a, power)]),
                 Operation::Div(a, b) if power > 0 && !self.facts(b).state_dependent => {
@@ -92,12 +99,12 @@ impl Graph {
                 },
             }
         }
-        found
+        Some(found)
     }
 
     /// The factors of a term that depend on a state, and those that do not.
-    fn split(&self, term: NodeId) -> (Factors, Factors) {
-        self.factors(term).into_iter().partition(|(factor, _)| self.facts(*factor).state_dependent)
+    fn split(&self, term: NodeId) -> Option<(Factors, Factors)> {
+        Some(self.factors(term)?.into_iter().partition(|(factor, _)| self.facts(*factor).state_dependent))
     }
 
     /// A product of powers; negative ones are divided by, as they were when the factors were taken apart.

@@ -6,6 +6,9 @@ use super::divide::Near;
 use super::{Graph, NodeId, Operation};
 use crate::expr::function::{Function, Quotient};
 
+/// Sums of powers of up to this many terms are written out.
+const WRITTEN_OUT: i32 = 16;
+
 impl Graph {
     /// (f(x) − f(0))/x from the same of the operands.
     pub(super) fn slope_of(&mut self, operation: Operation<NodeId>, near: &[Near], i: usize) -> Option<NodeId> {
@@ -73,13 +76,32 @@ impl Graph {
             let lower = self.powi(a, n - 1);
             return Some(self.mul(near.slope?, lower));
         }
-        let mut sum = zero;
-        for k in 0..n {
-            let (high, low) = (self.powi(a, k), self.powi(start, n - 1 - k));
-            let part = self.mul(high, low);
-            sum = self.add(sum, part);
-        }
+        let sum = self.power_sum(a, start, n);
         Some(self.mul(near.slope?, sum))
+    }
+
+    /// Σ aᵏ bⁿ⁻¹⁻ᵏ over k < n, for n ≥ 1: written out while that is short, since even powers of their own enclose more
+    /// tightly; beyond, by halves, so that its size is that of the digits of n.
+    fn power_sum(&mut self, a: NodeId, b: NodeId, n: i32) -> NodeId {
+        if n <= WRITTEN_OUT {
+            let mut sum = self.zero();
+            for k in 0..n {
+                let (high, low) = (self.powi(a, k), self.powi(b, n - 1 - k));
+                let part = self.mul(high, low);
+                sum = self.add(sum, part);
+            }
+            return sum;
+        }
+        let half = n / 2;
+        let sum = self.power_sum(a, b, half);
+        let (high, low) = (self.powi(a, half), self.powi(b, half));
+        let ends = self.add(high, low);
+        let even = self.mul(sum, ends);
+        if n % 2 == 0 {
+            return even;
+        }
+        let (grown, last) = (self.mul(a, even), self.powi(b, n - 1));
+        self.add(grown, last)
     }
 
     /// With a = a₀ (1 + w): a^p − a₀^p = a₀^p ((1 + w)^p − 1), w = x D a/a₀.

@@ -241,10 +241,9 @@ impl Number for Interval {
     }
 
     fn select([a, b, x, y]: [&Self; 4], domain: &mut Domain) -> Self {
-        let mut one_branch = true;
-        let value = interval::select(*a, *b, *x, *y, &mut one_branch);
-        domain.smooth &= one_branch;
-        value
+        // Where a and b merely touch one branch gives all values, but the kink is among the arguments.
+        domain.smooth &= a.intersect(*b).is_empty();
+        interval::select(*a, *b, *x, *y, &mut true)
     }
 
     fn saturation([s, c, v]: [&Self; 3], domain: &mut Domain) -> Self {

@@ -1,3 +1,5 @@
+//! Texts as YAML unfolds them, followed back to the bytes that they came from.
+
 use proptest::prelude::*;
 
 use super::super::events::{Events, What};

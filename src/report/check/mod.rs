@@ -1,6 +1,6 @@
 //! `restpoint check`: what was understood of a model file, for a reader and for a program.
 //!
-//! [`text`] is for reading: 80 columns, in ASCII if asked. [`json`] is the same as data. Both only present; whether the
+//! [`text()`] is for reading: 80 columns, in ASCII if asked. [`json`] is the same as data. Both only present; whether the
 //! model is sound was settled when it was made, and equations are written from its formulas, never from the compiled
 //! ones. A new section needs its lines in `tables` and its key in `data`.
 //!

@@ -1,7 +1,7 @@
 //! The report as text: its sections in order, the heading and the equations.
 //!
 //! Names from the file are cleansed; formulas hold only identifiers. Lines keep to 80 columns where their words allow.
-//! The tables of names and values stand in [`tables`](super::tables).
+//! The tables of names and values stand in [`tables`].
 
 use unicode_width::UnicodeWidthStr;
 

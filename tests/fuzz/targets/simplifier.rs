@@ -1,145 +1,114 @@
-//! Any formula at any point: the simplified graph, and the divided row times x, equal the formula as it was written.
+//! Any formula at any point: what the graph makes of it against the formula as it was written.
 //!
-//! Both are enclosed in intervals; enclosures of one real number must meet wherever both are defined.
+//! All is enclosed in intervals, and enclosures of one real number must meet. Checked are the simplified row and where it
+//! is defined, the row at x = 0, the row divided by x, and the derivatives of both by the mean value theorem: the rise
+//! between two points is the distance times some value of the derivative between them.
 #![no_main]
 
+mod written;
+
 use libfuzzer_sys::fuzz_target;
-use restpoint::diag::Span;
-use restpoint::expr::ast::{BinaryOp, Builtin, Expr, ExprKind};
-use restpoint::expr::builtin::BUILTINS;
-use restpoint::expr::graph::Graph;
+use restpoint::expr::ast::Expr;
+use restpoint::expr::graph::divide::AtZero;
+use restpoint::expr::graph::{Graph, NodeId, Variable};
 use restpoint::expr::tape::Tape;
 use restpoint::num::interval::Interval;
+use written::{Bytes, NAMES, Written};
 
-const NAMES: [&str; 4] = ["x", "y", "a", "b"];
+/// A state at which a formula with a pole or a border has it somewhere else.
+const ELSEWHERE: [f64; 2] = [1.371_234, 2.113_571];
 
-/// Reads a tree and a point off the bytes.
-struct Bytes<'b>(&'b [u8]);
+/// One formula in a graph, and the numbers to look at it with.
+struct Case {
+    expr: Expr,
+    graph: Graph,
+    parameters: [f64; 2],
+    y: f64,
+}
 
-impl Bytes<'_> {
-    fn next(&mut self) -> u8 {
-        let Some((&first, rest)) = self.0.split_first() else { return 0 };
-        self.0 = rest;
-        first
+impl Case {
+    /// As written, at this x.
+    fn written(&self, [x, y]: [f64; 2]) -> Written {
+        Written::of(&self.expr, &[x, y, self.parameters[0], self.parameters[1]].map(Interval::point))
     }
 
-    /// Small whole numbers and halves often, now and then anything.
-    fn number(&mut self) -> f64 {
-        match self.next() % 8 {
-            0..=3 => f64::from(self.next() % 5),
-            4 => 0.5,
-            5 => f64::from(self.next()) / 16.0,
-            6 => f64::from(self.next()) * 1e-9,
-            _ => f64::from(self.next()) * 1e6,
+    /// A node's enclosure, where it is defined and continuous over this x.
+    fn enclosed(&self, node: NodeId, x: Interval) -> Option<Interval> {
+        let tape = Tape::new(&self.graph, &[node]);
+        let mut run = tape.start(&self.parameters.map(Interval::point));
+        let defined = run.at(&[x, Interval::point(self.y)]).defined;
+        defined.then(|| *run.output(0))
+    }
+
+    fn meet(&self, what: &str, x: f64, [a, b]: [Interval; 2]) {
+        let (y, parameters) = (self.y, self.parameters);
+        assert!(!a.intersect(b).is_empty(), "{}: {what} at {x}, {y}, {parameters:?}: {a:?}, {b:?}", self.expr);
+    }
+
+    /// The simplified row is the written one, and is defined nowhere else.
+    fn same_value(&self, row: NodeId, x: f64) {
+        let written = self.written([x, self.y]);
+        let simplified = self.enclosed(row, Interval::point(x));
+        if let (true, Some(simplified)) = (written.defined, simplified) {
+            self.meet("value", x, [written.value, simplified]);
+        }
+        // What is undefined at every state is the parameters' doing, and a rule may drop it.
+        if written.undefined && self.written(ELSEWHERE).defined {
+            assert!(simplified.is_none(), "{} is undefined at {x}, {}, {:?}", self.expr, self.y, self.parameters);
         }
     }
 
-    fn tree(&mut self, depth: usize) -> Expr {
-        let choice = if depth == 0 { self.next() % 2 } else { self.next() % 12 };
-        let kind = match choice {
-            0 => ExprKind::Number(self.number()),
-            1 => ExprKind::Name(NAMES[usize::from(self.next()) % 4].into()),
-            2 => ExprKind::Neg(Box::new(self.tree(depth - 1))),
-            3..=8 => {
-                let op = [BinaryOp::Add, BinaryOp::Sub, BinaryOp::Mul, BinaryOp::Div, BinaryOp::Pow, BinaryOp::Mul];
-                let (a, b) = (self.tree(depth - 1), self.tree(depth - 1));
-                ExprKind::Binary(op[usize::from(choice) - 3], Box::new(a), Box::new(b))
-            }
-            _ => {
-                let row = &BUILTINS[usize::from(self.next()) % BUILTINS.len()];
-                let arguments = row.arguments.iter().map(|_| self.tree(depth - 1)).collect();
-                ExprKind::Call(row.builtin, arguments)
-            }
-        };
-        Expr { kind, span: Span::default() }
-    }
-}
-
-/// The formula as written, in intervals.
-fn direct(expr: &Expr, values: &[Interval; 4], ok: &mut bool) -> Interval {
-    let mut at = |expr: &Expr| direct(expr, values, ok);
-    match &expr.kind {
-        ExprKind::Number(value) => Interval::point(*value),
-        ExprKind::Name(name) => values[NAMES.iter().position(|known| known == name).unwrap_or(0)],
-        ExprKind::Neg(a) => -at(a),
-        ExprKind::Binary(op, a, b) => {
-            let (a, b) = (at(a), at(b));
-            match op {
-                BinaryOp::Add => a + b,
-                BinaryOp::Sub => a - b,
-                BinaryOp::Mul => a * b,
-                BinaryOp::Div => a.div(b, ok),
-                BinaryOp::Pow => power(a, b, ok),
-            }
+    /// The limit at x = 0 is the value there, where there is one.
+    fn same_at_zero(&mut self, row: NodeId) {
+        let AtZero::Is(start) = self.graph.at_zero(row, 0) else { return };
+        let written = self.written([0.0, self.y]);
+        if let (true, Some(start)) = (written.defined, self.enclosed(start, Interval::ZERO)) {
+            self.meet("value at zero", 0.0, [written.value, start]);
         }
-        ExprKind::Call(builtin, arguments) => {
-            let arguments: Vec<Interval> = arguments.iter().map(at).collect();
-            call(*builtin, &arguments, ok)
+    }
+
+    /// The divided row times x is the row.
+    fn same_product(&self, quotient: NodeId, x: f64) {
+        let written = self.written([x, self.y]);
+        if let (true, Some(quotient)) = (written.defined && x > 0.0, self.enclosed(quotient, Interval::point(x))) {
+            self.meet("divided", x, [written.value, quotient * Interval::point(x)]);
         }
-        ExprKind::Hole => Interval::EMPTY,
     }
-}
 
-fn power(a: Interval, b: Interval, ok: &mut bool) -> Interval {
-    if b.is_point() && b.lo().fract() == 0.0 && b.lo().abs() <= 64.0 {
-        return a.powi(b.lo() as i32, ok);
-    }
-    a.pow(b, ok)
-}
-
-fn call(builtin: Builtin, a: &[Interval], ok: &mut bool) -> Interval {
-    let one = Interval::ONE;
-    match builtin {
-        Builtin::Exp => a[0].exp(),
-        Builtin::Ln => a[0].ln(ok),
-        Builtin::Log10 => a[0].log10(ok),
-        Builtin::Expm1 => a[0].expm1(),
-        Builtin::Log1p => a[0].log1p(ok),
-        Builtin::Sqrt => a[0].sqrt(ok),
-        Builtin::Abs => a[0].abs(),
-        Builtin::Min => a[0].min(a[1]),
-        Builtin::Max => a[0].max(a[1]),
-        Builtin::Tanh => a[0].tanh(),
-        Builtin::Clamp => a[0].max(a[1]).min(a[2]),
-        Builtin::Ramp => (a[0] - a[1]).div(a[2] - a[1], ok).max(Interval::ZERO).min(one),
-        Builtin::Logistic => a[1] * a[0] * (one - a[0].div(a[2], ok)),
-        Builtin::Holling1 => a[1] * a[0],
-        Builtin::Holling2 => (a[1] * a[0]).div(one + a[1] * a[2] * a[0], ok),
-        Builtin::Holling3 => {
-            let square = a[0].powi(2, ok);
-            (a[1] * square).div(one + a[1] * a[2] * square, ok)
+    /// The mean value theorem, for a node that is continuous between two points.
+    fn mean_value(&mut self, what: &str, node: NodeId, [low, high]: [f64; 2]) {
+        let slope = self.graph.derivative(node, Variable::State(0));
+        let between = Interval::new(low, high);
+        let (Some(_), Some(slope)) = (self.enclosed(node, between), self.enclosed(slope, between)) else { return };
+        let ends = [low, high].map(|x| self.enclosed(node, Interval::point(x)));
+        if let [Some(begin), Some(end)] = ends {
+            let run = Interval::point(high) - Interval::point(low);
+            self.meet(what, low, [end - begin, slope * run]);
         }
     }
 }
 
 fuzz_target!(|bytes: &[u8]| {
     let mut bytes = Bytes(bytes);
-    let point: [f64; 4] = std::array::from_fn(|_| bytes.number());
+    let [x, other, y, a, b]: [f64; 5] = std::array::from_fn(|_| bytes.number());
+    let domains = [a, b].map(|value| bytes.domain(value));
     let expr = bytes.tree(4);
-    let values = point.map(Interval::point);
-    let mut written_ok = true;
-    let written = direct(&expr, &values, &mut written_ok);
-    let mut graph = Graph::new(2, values[2..].to_vec());
-    let row = graph.read(&expr, &mut |graph, name| match name {
-        "x" => graph.state(0),
-        "y" => graph.state(1),
-        "a" => graph.parameter(0),
-        _ => graph.parameter(1),
+    let mut graph = Graph::new(2, domains.to_vec());
+    let row = graph.read(&expr, &mut |graph, name| match NAMES.iter().position(|known| *known == name) {
+        Some(i @ (0 | 1)) => graph.state(i),
+        i => graph.parameter(i.unwrap_or(2) - 2),
     });
-    let tape = Tape::new(&graph, &[row]);
-    let mut run = tape.start(&values[2..]);
-    let defined = run.at(&values[..2]).defined;
-    let simplified = *run.output(0);
-    if written_ok && defined {
-        assert!(!written.intersect(simplified).is_empty(), "{expr} at {point:?}: {written:?} and {simplified:?}");
-    }
-    let Some(quotient) = graph.divide(row, 0).quotient else { return };
-    let tape = Tape::new(&graph, &[quotient]);
-    let mut run = tape.start(&values[2..]);
-    let quotient_defined = run.at(&values[..2]).defined;
-    let product = *run.output(0) * values[0];
+    let mut case = Case { expr, graph, parameters: [a, b], y };
+    let ends = [x.min(other), x.max(other)];
+    case.same_value(row, x);
+    case.mean_value("derivative", row, ends);
     // Limits are taken with every other state positive.
-    if written_ok && quotient_defined && point[0] > 0.0 && point[1] > 0.0 {
-        assert!(!written.intersect(product).is_empty(), "{expr} divided by x at {point:?}: {written:?} and {product:?}");
+    if y == 0.0 {
+        return;
+    }
+    case.same_at_zero(row);
+    if let Some(quotient) = case.graph.divide(row, 0).quotient {
+        case.same_product(quotient, x);
+        case.mean_value("derivative of the divided row", quotient, ends);
     }
 });
