@@ -53,7 +53,7 @@ fn scenes(model: &Model) -> Vec<Scene> {
     let kink = equilibrium([312.456, 41.2], 2e-9, false, Derivative::Kink);
     let corner = equilibrium([0.0, 0.0], 0.0, true, Derivative::Missing);
     let open = vec![
-        unresolved([[12.0, 12.5], [0.0, 0.0]], Probably::DoubleRoot, "None, one double or two may be here."),
+        unresolved([[12.0, 12.5], [0.0, 0.0]], Probably::DoubleRoot, "none, one double or two equilibria"),
         unresolved([[0.0, 1500.0], [0.0, 400.25]], Probably::Budget, ""),
     ];
     let problem = Diagnostic::error(model.scenarios[2].at, "the formulas are too many");
