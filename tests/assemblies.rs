@@ -64,7 +64,7 @@ fn a_large_community_gets_its_assembly_and_says_what_is_not_proved() {
     let matrix = (0..n * n).map(entry).map(Interval::point).collect();
     let community = Affine { growth, matrix };
     let problem = Problem { rows: &[], values: &[], sides: &vec![[0.0, 1e3]; n] };
-    let budget = Budget { boxes: 50_000, stop: &|| false, workers: &OneByOne };
+    let budget = Budget { boxes: 50_000, stop: &|| false, workers: &OneByOne, observer: None };
     let found = find(&community, &problem, &budget);
     assert!(!found.complete && !found.none_above && found.unresolved.len() == 1);
     assert_eq!(found.unresolved[0].probably, Probably::Budget);

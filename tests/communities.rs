@@ -15,7 +15,7 @@ use restpoint::analysis::equilibria::{
 };
 use restpoint::num::interval::Interval;
 
-const BUDGET: Budget<'_> = Budget { boxes: 50_000, stop: &|| false, workers: &OneByOne };
+const BUDGET: Budget<'_> = Budget { boxes: 50_000, stop: &|| false, workers: &OneByOne, observer: None };
 
 fn solve(community: &Affine, upper: f64) -> Equilibria {
     let sides = vec![[0.0, upper]; community.species()];

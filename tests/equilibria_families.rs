@@ -134,7 +134,7 @@ fn webs_of_the_catalogue_have_their_equilibria() {
 fn two_workers_find_the_same_as_one() {
     for family in [webs::web(5, 3), webs::webx(4, 2), linear::lotka_volterra(5, 9)] {
         let one = certified(&family);
-        let budget = Budget { boxes: 50_000, stop: &|| false, workers: &Two };
+        let budget = Budget { boxes: 50_000, stop: &|| false, workers: &Two, observer: None };
         let two = solve_within(&mut family.text.read(), 0, Method::Certified, &budget);
         assert_eq!((one.list, one.complete, one.boxes), (two.list, two.complete, two.boxes), "{}", family.name);
     }
@@ -144,7 +144,7 @@ fn two_workers_find_the_same_as_one() {
 fn a_spent_budget_is_said_and_nothing_false_with_it() {
     let family = webs::six_species();
     let whole = certified(&family);
-    let budget = Budget { boxes: 3, stop: &|| false, workers: &OneByOne };
+    let budget = Budget { boxes: 3, stop: &|| false, workers: &OneByOne, observer: None };
     let found = solve_within(&mut family.text.read(), 0, Method::Certified, &budget);
     assert!(!found.complete && !found.none_above);
     assert!(found.unresolved.iter().any(|open| open.probably == Probably::Budget));
@@ -156,7 +156,7 @@ fn a_spent_budget_is_said_and_nothing_false_with_it() {
         let open = found.unresolved.iter().any(|open| meet(&open.region, &equilibrium.enclosure));
         assert!(listed || open, "{:?} was lost with the budget", equilibrium.state);
     }
-    let stopped = Budget { boxes: 50_000, stop: &|| true, workers: &OneByOne };
+    let stopped = Budget { boxes: 50_000, stop: &|| true, workers: &OneByOne, observer: None };
     let found = solve_within(&mut family.text.read(), 0, Method::Certified, &stopped);
     assert!(!found.complete && found.unresolved[0].region.iter().all(|side| side.width() > 0.0));
 }

@@ -19,7 +19,7 @@ use restpoint::model::system::System;
 use restpoint::num::interval::Interval;
 use restpoint::shell::files::read_model;
 
-const BUDGET: Budget<'_> = Budget { boxes: 5_000, stop: &|| false, workers: &OneByOne };
+const BUDGET: Budget<'_> = Budget { boxes: 5_000, stop: &|| false, workers: &OneByOne, observer: None };
 
 /// A web of `n` species: the first ⌈n/2⌉ grow by themselves and compete, the others eat two or three species before them
 /// with a shared type II response (Holling 1959).
@@ -167,7 +167,12 @@ fn stop_is_heard() {
     let found = solve(
         &text,
         all,
-        &Budget { boxes: usize::MAX, stop: &|| begun.elapsed() > Duration::from_millis(300), workers: &Two },
+        &Budget {
+            boxes: usize::MAX,
+            stop: &|| begun.elapsed() > Duration::from_millis(300),
+            workers: &Two,
+            observer: None,
+        },
     );
     assert!(begun.elapsed() < Duration::from_millis(1500), "{:?}", begun.elapsed());
     assert!(!found.complete);

@@ -4,18 +4,37 @@ use std::path::PathBuf;
 
 use clap::{Args, Parser, Subcommand, ValueEnum};
 
+/// Seconds that the search of one scenario may take where `--budget` does not say.
+pub(super) const BUDGET: f64 = 10.0;
+
+/// More threads than this are a slip of the finger.
+const MOST_THREADS: i64 = 1024;
+
 /// Every equilibrium of a harvested community, with a proof where one is possible.
 #[derive(Debug, Parser)]
-#[command(name = "restpoint", version, about, args_conflicts_with_subcommands = false, subcommand_negates_reqs = true)]
-#[command(after_help = "Without a command, restpoint says what it understood of MODEL, or of a model of its own.")]
+#[command(name = "restpoint", version, about, after_help = AFTER, max_term_width = 80)]
+#[command(override_usage = "restpoint [OPTIONS] [MODEL]\n       restpoint <COMMAND> [OPTIONS] MODEL")]
 pub(super) struct Arguments {
     #[command(subcommand)]
     pub(super) command: Option<Command>,
     /// Model file in YAML, or - for standard input
     pub(super) model: Option<PathBuf>,
     #[command(flatten)]
+    pub(super) work: Work,
+    #[command(flatten)]
     pub(super) options: Options,
 }
+
+const AFTER: &str = "\
+Without a command, restpoint prints the table of MODEL, or of a model of its own.
+Results go to standard output, everything else to standard error.
+
+Exit status:
+  0    done; warnings do not change it
+  1    the model or its data is at fault, or a file could not be read or written
+  2    the command line was not understood
+  3    with --strict: something that is shown is not proved
+  130  interrupted; what was found until then is printed and marked as partial";
 
 /// What to do.
 #[derive(Debug, Subcommand)]
@@ -25,6 +44,65 @@ pub(super) enum Command {
         /// Model file in YAML, or - for standard input
         model: PathBuf,
     },
+    /// Print every equilibrium of each scenario, and what is proved of it
+    #[command(after_help = "Equilibria are called E1, E2, ... and keep their names in all scenarios of one run.")]
+    Table {
+        /// Model file in YAML, or - for standard input
+        model: PathBuf,
+        #[command(flatten)]
+        work: Work,
+    },
+}
+
+/// What is to be solved, and at what cost.
+#[derive(Debug, Default, Args)]
+pub(super) struct Work {
+    /// Only this scenario; may be given several times [default: all, always in the file's order]
+    #[arg(long = "scenario", value_name = "NAME")]
+    pub(super) scenarios: Vec<String>,
+    /// Give a parameter this value in every scenario; may be given several times, the last one counts
+    #[arg(long, value_name = "NAME=VALUE", value_parser = setting)]
+    pub(super) set: Vec<(String, f64)>,
+    /// End with status 3 when anything shown is not proved
+    #[arg(long)]
+    pub(super) strict: bool,
+    /// Seconds that the search of each scenario may take [default: 10]
+    #[arg(long, value_name = "SECONDS", value_parser = seconds)]
+    pub(super) budget: Option<f64>,
+    /// Threads that search at once; the result is the same [default: as many as there are processors]
+    #[arg(long, value_name = "N", value_parser = clap::value_parser!(u16).range(1..=MOST_THREADS))]
+    pub(super) threads: Option<u16>,
+}
+
+impl Work {
+    /// The first option that was given, as it was typed.
+    pub(super) fn given(&self) -> Option<&'static str> {
+        let given = [
+            ("--scenario", !self.scenarios.is_empty()),
+            ("--set", !self.set.is_empty()),
+            ("--strict", self.strict),
+            ("--budget", self.budget.is_some()),
+            ("--threads", self.threads.is_some()),
+        ];
+        given.iter().find_map(|&(option, is_given)| is_given.then_some(option))
+    }
+}
+
+fn setting(text: &str) -> Result<(String, f64), String> {
+    let Some((name, value)) = text.split_once('=') else {
+        return Err("write a parameter's name, = and a number, for example E=1.5".to_owned());
+    };
+    match value.trim().parse() {
+        Ok(number) if f64::is_finite(number) => Ok((name.trim().to_owned(), number)),
+        _ => Err(format!("\"{}\" is not a finite number", value.trim())),
+    }
+}
+
+fn seconds(text: &str) -> Result<f64, String> {
+    match text.parse() {
+        Ok(number) if f64::is_finite(number) && number > 0.0 => Ok(number),
+        _ => Err("a positive number of seconds is needed, for example 0.5".to_owned()),
+    }
 }
 
 /// Options that every command takes.

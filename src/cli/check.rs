@@ -2,9 +2,8 @@
 
 use std::path::Path;
 
-use serde_json::{Value, json};
+use serde_json::Value;
 
-use crate::diag::render::position;
 use crate::diag::{Diagnostic, Sources};
 use crate::model::Model;
 use crate::model::lint::lint;
@@ -13,25 +12,16 @@ use crate::model::units::check_units;
 use crate::report::check::{Style, Subject, json as report_json, text as report_text};
 
 use super::arguments::{Format, Options};
-use super::model::{Reading, read, remarks};
+use super::model::{Reading, errors, pretty, read, remarks, wrong};
 use super::{Exit, Outcome};
 
 /// Reads the model at `path`, or the one compiled in, and says what was understood.
 pub(super) fn check(path: Option<&Path>, options: &Options, color: bool) -> Outcome {
     match read(path) {
-        Reading::Unreadable(reason) => Outcome { result: String::new(), remarks: reason, exit: Exit::Fault },
+        Reading::Unreadable(reason) => Outcome::only(reason, Exit::Fault),
         Reading::Wrong(sources, found) => wrong(&found, &sources, options, color),
-        Reading::Model(model) => understood(&model, options, color),
+        Reading::Model(original) => understood(&original.model, options, color),
     }
-}
-
-/// A model that cannot be used: the messages for a reader, and for a program where one is asked for.
-fn wrong(found: &[Diagnostic], sources: &Sources, options: &Options, color: bool) -> Outcome {
-    let result = match options.format {
-        Format::Text => String::new(),
-        Format::Json => pretty(&json!({ "errors": errors(found, sources) })),
-    };
-    Outcome { result, remarks: remarks(found, sources, color), exit: Exit::Fault }
 }
 
 fn understood(model: &Model, options: &Options, color: bool) -> Outcome {
@@ -52,7 +42,7 @@ fn understood(model: &Model, options: &Options, color: bool) -> Outcome {
     let subject = Subject { model, units: &units, bounds: bounds.as_deref(), warnings: &warnings };
     let result = match options.format {
         Format::Text => report_text(&subject, if options.ascii { Style::Ascii } else { Style::Unicode }),
-        Format::Json => pretty(&with_errors(report_json(&subject), &missing, &model.sources)),
+        Format::Json => pretty(&with_errors(report_json(&subject), &missing, &model.sources), options),
     };
     let exit = if missing.is_empty() { Exit::Done } else { Exit::Fault };
     Outcome { result, remarks: remarks(&missing, &model.sources, color), exit }
@@ -63,24 +53,4 @@ fn with_errors(mut report: Value, found: &[Diagnostic], sources: &Sources) -> Va
         report.insert("errors".into(), errors(found, sources));
     }
     report
-}
-
-/// Each error as data: where it is, what is wrong, what was expected, what to do.
-fn errors(found: &[Diagnostic], sources: &Sources) -> Value {
-    let error = |diagnostic: &Diagnostic| {
-        let (file, line, column) = position(sources, diagnostic.at);
-        json!({
-            "file": file,
-            "line": line,
-            "column": column,
-            "message": diagnostic.message,
-            "expected": diagnostic.expected,
-            "help": diagnostic.help,
-        })
-    };
-    Value::Array(found.iter().map(error).collect())
-}
-
-fn pretty(value: &Value) -> String {
-    format!("{value:#}\n")
 }

@@ -2,18 +2,22 @@
 //!
 //! `arguments` has the commands and options; one module a command does its work on values and returns what to print. Only
 //! here and in `shell` is anything read, written or printed. To add a command: a variant in `arguments`, a module, a line
-//! in `run`.
+//! in `perform`.
 
 use std::io::{self, IsTerminal, Write};
 use std::process::ExitCode;
 
 use clap::Parser;
 
-use arguments::{Arguments, Color, Command};
+use arguments::{Arguments, Color, Command, Options};
+
+use crate::shell::{files, terminal};
 
 mod arguments;
 mod check;
+mod choice;
 mod model;
+mod table;
 
 /// How a run ended; the numbers are part of the contract.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -24,6 +28,10 @@ pub enum Exit {
     Fault = 1,
     /// The command line was not understood.
     Usage = 2,
+    /// Something shown is not proved, and proof was asked for.
+    Unproved = 3,
+    /// Interrupted; the result is partial and says so.
+    Interrupted = 130,
 }
 
 impl From<Exit> for ExitCode {
@@ -41,6 +49,24 @@ pub(crate) struct Outcome {
     pub(crate) exit: Exit,
 }
 
+impl Outcome {
+    /// Nothing but a remark.
+    fn only(remarks: String, exit: Exit) -> Self {
+        Self { result: String::new(), remarks, exit }
+    }
+}
+
+/// What results and remarks are put on.
+#[derive(Clone, Copy)]
+struct Screen {
+    /// Columns for results.
+    width: usize,
+    /// Whether results may be coloured.
+    color: bool,
+    /// Whether remarks may be coloured.
+    color_remarks: bool,
+}
+
 /// Runs the program on the process's own arguments and streams.
 pub fn main() -> ExitCode {
     match Arguments::try_parse() {
@@ -50,38 +76,73 @@ pub fn main() -> ExitCode {
 }
 
 fn usage(error: &clap::Error) -> Exit {
-    // Help and version were asked for; they go to standard output and are no mistake.
-    let asked_for = !error.use_stderr();
-    let printed = error.print();
-    if asked_for && printed.is_ok() { Exit::Done } else { Exit::Usage }
+    // Help and version were asked for; they go to standard output and are no mistake. Nor is a reader that has gone away.
+    let printed = match error.print() {
+        Err(error) if error.kind() == io::ErrorKind::BrokenPipe => Ok(()),
+        other => other,
+    };
+    match (error.use_stderr(), printed) {
+        (true, _) => Exit::Usage,
+        (false, Ok(())) => Exit::Done,
+        (false, Err(_)) => Exit::Fault,
+    }
 }
 
 fn run(arguments: &Arguments) -> Exit {
-    let color = match arguments.options.color {
+    let options = &arguments.options;
+    // Before the work, so that none is done in vain.
+    let no_place = || Some((Exit::Fault, files::refusal(options.output.as_deref()?, options.force)?));
+    match misplaced(arguments).or_else(no_place) {
+        Some((exit, reason)) => {
+            complain(&format!("error: {reason}\n"));
+            exit
+        }
+        None => finish(&perform(arguments, screen(options)), options),
+    }
+}
+
+fn perform(arguments: &Arguments, screen: Screen) -> Outcome {
+    let options = &arguments.options;
+    match &arguments.command {
+        Some(Command::Check { model }) => check::check(Some(model), options, screen.color_remarks),
+        Some(Command::Table { model, work }) => table::table(Some(model), work, options, screen),
+        None => table::table(arguments.model.as_deref(), &arguments.work, options, screen),
+    }
+}
+
+/// What stands before a command that belongs after it, and would have no effect there.
+fn misplaced(arguments: &Arguments) -> Option<(Exit, String)> {
+    arguments.command.as_ref()?;
+    let before = match &arguments.model {
+        Some(model) => Some(model.display().to_string()),
+        None => arguments.work.given().map(str::to_owned),
+    };
+    before.map(|what| (Exit::Usage, format!("{what} belongs after the command, not before it")))
+}
+
+fn screen(options: &Options) -> Screen {
+    let on_terminal = options.output.is_none() && io::stdout().is_terminal();
+    let width = if on_terminal { terminal::width() } else { terminal::COLUMNS };
+    let color = |is_terminal| match options.color {
         Color::Always => true,
         Color::Never => false,
-        Color::Auto => colours_wanted(),
+        Color::Auto => is_terminal && colour_can_be_shown(),
     };
-    let outcome = match &arguments.command {
-        Some(Command::Check { model }) => check::check(Some(model), &arguments.options, color),
-        None => check::check(arguments.model.as_deref(), &arguments.options, color),
-    };
-    finish(&outcome, &arguments.options)
+    Screen { width, color: color(on_terminal), color_remarks: color(io::stderr().is_terminal()) }
 }
 
-/// Colour only where someone looks at a terminal that can show it, and has not asked for none (NO_COLOR, set and not
-/// empty).
-fn colours_wanted() -> bool {
+/// Whether the terminal can show colour, and its user has not asked for none (NO_COLOR, set and not empty).
+fn colour_can_be_shown() -> bool {
     let refused = std::env::var_os("NO_COLOR").is_some_and(|value| !value.is_empty());
     let dumb = std::env::var_os("TERM").is_none_or(|term| term == "dumb");
-    !refused && !dumb && io::stderr().is_terminal()
+    !refused && !dumb
 }
 
-fn finish(outcome: &Outcome, options: &arguments::Options) -> Exit {
+fn finish(outcome: &Outcome, options: &Options) -> Exit {
     let mut exit = outcome.exit;
     if !outcome.result.is_empty() {
         let written = match &options.output {
-            Some(path) => crate::shell::files::write_whole(path, &outcome.result, options.force),
+            Some(path) => files::write_whole(path, &outcome.result, options.force),
             None => print(&mut io::stdout().lock(), &outcome.result).map_err(Into::into),
         };
         if let Err(error) = written {

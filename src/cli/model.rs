@@ -1,12 +1,17 @@
-//! The model that a command works on: from a file, from standard input, or compiled in.
+//! The model that a command works on: from a file, from standard input, or compiled in; and what is said of a wrong one.
 
 use std::path::Path;
 
-use crate::diag::render::render;
+use serde_json::{Value, json};
+
+use crate::diag::render::{position, render};
 use crate::diag::{Diagnostic, Severity, Sources};
 use crate::model::Model;
 use crate::model::load::{NoFiles, load};
-use crate::shell::files::read_model;
+use crate::shell::files::{read_model, sha256};
+
+use super::arguments::{Format, Options};
+use super::{Exit, Outcome};
 
 /// The model that is shown when none is named.
 const DEMONSTRATION: (&str, &str) = ("scenarios/skarnby-bank.yaml", include_str!("../../scenarios/skarnby-bank.yaml"));
@@ -14,26 +19,71 @@ const DEMONSTRATION: (&str, &str) = ("scenarios/skarnby-bank.yaml", include_str!
 /// What reading a model came to.
 pub(super) enum Reading {
     /// A sound model.
-    Model(Box<Model>),
+    Model(Box<Original>),
     /// Everything that is wrong with it.
     Wrong(Sources, Vec<Diagnostic>),
     /// It could not be read at all, and why.
     Unreadable(String),
 }
 
+/// A model, and what tells its files from all others.
+pub(super) struct Original {
+    pub(super) model: Model,
+    /// SHA-256 of the model file.
+    pub(super) sha256: String,
+    /// Names and SHA-256 of the tables that it names.
+    pub(super) tables: Vec<(String, String)>,
+}
+
 /// Reads the model at `path`; without one, the model that is compiled in.
 pub(super) fn read(path: Option<&Path>) -> Reading {
-    let (model, sources, found) = match path {
-        None => load(DEMONSTRATION.0, DEMONSTRATION.1.as_bytes(), &NoFiles),
-        Some(path) => match read_model(path) {
-            Ok(found) => load(&found.name, &found.bytes, &found.tables),
-            Err(error) => return Reading::Unreadable(format!("error: {error:#}\n")),
-        },
+    let Some(path) = path else {
+        let (name, text) = DEMONSTRATION;
+        return reading(load(name, text.as_bytes(), &NoFiles), sha256(text.as_bytes()), Vec::new);
     };
+    match read_model(path) {
+        Ok(found) => {
+            let loaded = load(&found.name, &found.bytes, &found.tables);
+            reading(loaded, sha256(&found.bytes), || found.tables.into_read())
+        }
+        Err(error) => Reading::Unreadable(format!("error: {error:#}\n")),
+    }
+}
+
+fn reading(
+    (model, sources, found): (Option<Model>, Sources, Vec<Diagnostic>),
+    sha256: String,
+    tables: impl FnOnce() -> Vec<(String, String)>,
+) -> Reading {
     match model {
-        Some(model) => Reading::Model(Box::new(model)),
+        Some(model) => Reading::Model(Box::new(Original { model, sha256, tables: tables() })),
         None => Reading::Wrong(sources, found),
     }
+}
+
+/// A model that cannot be used: the messages for a reader, and for a program where one is asked for.
+pub(super) fn wrong(found: &[Diagnostic], sources: &Sources, options: &Options, color: bool) -> Outcome {
+    let result = match options.format {
+        Format::Text => String::new(),
+        Format::Json => pretty(&json!({ "errors": errors(found, sources) }), options),
+    };
+    Outcome { result, remarks: remarks(found, sources, color), exit: Exit::Fault }
+}
+
+/// Each error as data: where it is, what is wrong, what was expected, what to do.
+pub(super) fn errors(found: &[Diagnostic], sources: &Sources) -> Value {
+    let error = |diagnostic: &Diagnostic| {
+        let (file, line, column) = position(sources, diagnostic.at);
+        json!({
+            "file": file,
+            "line": line,
+            "column": column,
+            "message": diagnostic.message,
+            "expected": diagnostic.expected,
+            "help": diagnostic.help,
+        })
+    };
+    Value::Array(found.iter().map(error).collect())
 }
 
 /// Diagnostics for a reader: each in full, then how many there are.
@@ -44,4 +94,22 @@ pub(super) fn remarks(found: &[Diagnostic], sources: &Sources, color: bool) -> S
         text.push(format!("{errors} errors\n"));
     }
     text.join("\n")
+}
+
+/// JSON that ends in a line break, in ASCII where asked for.
+pub(super) fn pretty(value: &Value, options: &Options) -> String {
+    let text = format!("{value:#}\n");
+    if !options.ascii || text.is_ascii() {
+        return text;
+    }
+    let mut ascii = String::with_capacity(text.len() + 64);
+    for c in text.chars() {
+        // Only strings hold anything else, and there every character may be written as its UTF-16 units.
+        if c.is_ascii() {
+            ascii.push(c);
+        } else {
+            ascii.extend(c.encode_utf16(&mut [0; 2]).iter().map(|unit| format!("\\u{unit:04x}")));
+        }
+    }
+    ascii
 }

@@ -3,9 +3,11 @@
 use std::fs::File;
 use std::io::{self, Read, Write};
 use std::path::{Path, PathBuf};
+use std::sync::Mutex;
 
 use anyhow::{Context, Result, bail};
 use atomic_write_file::AtomicWriteFile;
+use sha2::{Digest, Sha256};
 
 use crate::model::load::Files;
 
@@ -30,7 +32,7 @@ pub fn read_model(path: &Path) -> Result<Found> {
     if path == Path::new("-") {
         let mut bytes = Vec::new();
         io::stdin().lock().take(MODEL_LIMIT as u64 + 1).read_to_end(&mut bytes).context("standard input")?;
-        return Ok(Found { name: "standard input".into(), bytes, tables: Folder(PathBuf::from(".")) });
+        return Ok(Found { name: "standard input".into(), bytes, tables: Folder::at(PathBuf::from(".")) });
     }
     let name = path.display().to_string();
     if path.is_dir() {
@@ -38,7 +40,7 @@ pub fn read_model(path: &Path) -> Result<Found> {
     }
     let bytes = read_up_to(path, MODEL_LIMIT).map_err(|error| unreadable(&name, &error))?;
     let folder = path.parent().unwrap_or(Path::new("")).to_path_buf();
-    Ok(Found { name, bytes, tables: Folder(folder) })
+    Ok(Found { name, bytes, tables: Folder::at(folder) })
 }
 
 fn unreadable(name: &str, error: &io::Error) -> anyhow::Error {
@@ -65,12 +67,54 @@ fn read_up_to(path: &Path, limit: usize) -> io::Result<Vec<u8>> {
     Ok(bytes)
 }
 
-/// The folder that a model's tables are relative to.
-pub struct Folder(PathBuf);
+/// The folder that a model's tables are relative to, and what was read from it.
+pub struct Folder {
+    path: PathBuf,
+    read: Mutex<Vec<(String, String)>>,
+}
+
+impl Folder {
+    fn at(path: PathBuf) -> Self {
+        Self { path, read: Mutex::new(Vec::new()) }
+    }
+
+    /// Every file that was read, in order: as it was named, and its SHA-256.
+    pub fn into_read(self) -> Vec<(String, String)> {
+        self.read.into_inner().unwrap_or_else(std::sync::PoisonError::into_inner)
+    }
+}
 
 impl Files for Folder {
     fn read(&self, path: &str, limit: usize) -> std::result::Result<Vec<u8>, String> {
-        read_up_to(&self.0.join(path), limit).map_err(|error| plain(&error))
+        let bytes = read_up_to(&self.path.join(path), limit).map_err(|error| plain(&error))?;
+        if let Ok(mut read) = self.read.lock()
+            && read.iter().all(|(name, _)| name != path)
+        {
+            read.push((path.to_owned(), sha256(&bytes)));
+        }
+        Ok(bytes)
+    }
+}
+
+/// The SHA-256 of some bytes, in hexadecimal digits.
+pub fn sha256(bytes: &[u8]) -> String {
+    format!("{:x}", Sha256::digest(bytes))
+}
+
+/// Why a result may not be written to a path; asked before the work, so that none is lost.
+pub fn refusal(path: &Path, replace: bool) -> Option<String> {
+    let name = path.display();
+    let is_link = path.symlink_metadata().is_ok_and(|found| found.is_symlink());
+    match path.metadata() {
+        Err(_) if is_link => Some(format!("{name} is a link to nothing; name the file itself")),
+        Err(_) => None,
+        Ok(found) if found.is_dir() => Some(format!("{name} is a folder; name a file in it")),
+        // Renaming a file into its place would do away with a device or a pipe.
+        Ok(found) if !found.is_file() => Some(format!("{name} is no ordinary file; write to standard output instead")),
+        Ok(_) if replace => None,
+        Ok(_) => Some(format!(
+            "{name} is there already and was left as it is; choose another name, or add --force to replace it"
+        )),
     }
 }
 
@@ -79,16 +123,23 @@ impl Files for Folder {
 /// A symbolic link is followed, so that the file it names is replaced and the link stays.
 ///
 /// # Errors
-/// If the file is there and `replace` is not set, or it cannot be written.
+/// If it is [refused](refusal), or cannot be written.
 pub fn write_whole(path: &Path, text: &str, replace: bool) -> Result<()> {
-    let name = path.display().to_string();
-    if path.exists() && !replace {
-        bail!("{name} is there already and was left as it is; choose another name, or add --force to replace it");
+    if let Some(reason) = refusal(path, replace) {
+        bail!(reason);
     }
     let target = std::fs::canonicalize(path).unwrap_or_else(|_| path.to_path_buf());
     let written = AtomicWriteFile::open(&target).and_then(|mut file| {
         file.write_all(text.as_bytes())?;
         file.commit()
     });
-    written.map_err(|error| anyhow::anyhow!("{name} cannot be written: {}; nothing was changed", plain(&error)))
+    let name = path.display();
+    written.map_err(|error| anyhow::anyhow!("{name} cannot be written: {}; nothing was changed", unwritable(&error)))
+}
+
+fn unwritable(error: &io::Error) -> String {
+    match error.kind() {
+        io::ErrorKind::NotFound => "there is no such folder".into(),
+        _ => plain(error),
+    }
 }

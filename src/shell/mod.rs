@@ -1,3 +1,8 @@
-//! The outside world: files and streams. Nothing below this module touches any.
+//! The outside world: files, streams, the clock, threads, signals and the terminal. Nothing below this module touches any.
 
+pub mod clock;
 pub mod files;
+pub mod progress;
+pub mod signal;
+pub mod terminal;
+pub mod workers;

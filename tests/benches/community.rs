@@ -15,7 +15,7 @@ use restpoint::num::interval::Interval;
 use restpoint::num::random::Source;
 use restpoint::shell::files::read_model;
 
-const BUDGET: Budget<'_> = Budget { boxes: 50_000, stop: &|| false, workers: &OneByOne };
+const BUDGET: Budget<'_> = Budget { boxes: 50_000, stop: &|| false, workers: &OneByOne, observer: None };
 const ROUNDS: usize = 5;
 
 fn main() {

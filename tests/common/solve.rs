@@ -17,7 +17,7 @@ pub enum Method {
 
 /// Everything found in one scenario, one job after another.
 pub fn solve(read: &mut Read, scenario: usize, method: Method) -> Equilibria {
-    solve_within(read, scenario, method, &Budget { boxes: 50_000, stop: &|| false, workers: &OneByOne })
+    solve_within(read, scenario, method, &Budget { boxes: 50_000, stop: &|| false, workers: &OneByOne, observer: None })
 }
 
 /// Everything found in one scenario within a budget.

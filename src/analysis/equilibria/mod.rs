@@ -101,6 +101,25 @@ pub struct Budget<'b> {
     pub stop: &'b (dyn Fn() -> bool + Sync),
     /// Who searches the faces.
     pub workers: &'b dyn Workers,
+    /// Told of work as it is done, by any of the workers.
+    pub observer: Option<&'b (dyn Fn(Progress) + Sync)>,
+}
+
+/// Work done since the last time that the observer was told.
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq)]
+pub struct Progress {
+    /// Faces finished.
+    pub faces: usize,
+    /// Boxes looked at.
+    pub boxes: usize,
+}
+
+impl Budget<'_> {
+    fn tell(&self, faces: usize, boxes: usize) {
+        if let Some(observer) = self.observer {
+            observer(Progress { faces, boxes });
+        }
+    }
 }
 
 /// Walks into which the faces are divided, for each worker: faces differ, and a worker that is done takes the next.
@@ -235,8 +254,14 @@ impl Whole {
         let tape = Tape::over(graph, &face.rows, &face.variables);
         let side = |&i: &usize| Interval::new(problem.sides[i][0], problem.sides[i][1]);
         let region: Region = face.variables.iter().map(side).collect();
-        let limits = Limits { boxes: budget.boxes, stop: &|| (budget.stop)() };
+        // The search asks once a box.
+        let stop = || {
+            budget.tell(0, 1);
+            (budget.stop)()
+        };
+        let limits = Limits { boxes: budget.boxes, stop: &stop };
         let found = Search::run(&tape, problem.values, region.clone(), &limits);
+        budget.tell(1, 0);
         self.boxes += found.boxes;
         self.none_above = self.none_above && above::is_empty(&tape, problem.values, &region);
         let remains = if found.open.is_empty() && found.continuum.is_empty() {

@@ -1,0 +1,87 @@
+//! Scenarios and parameters that were named on the command line, found in the model.
+
+use unicode_normalization::UnicodeNormalization;
+
+use crate::diag::nearest::nearest;
+use crate::model::{Model, Name, Parameter, ParameterId};
+
+use super::arguments::Work;
+
+/// What of a model is to be solved.
+pub(super) struct Choice {
+    /// Indices of scenarios, in the file's order.
+    pub(super) scenarios: Vec<usize>,
+    /// New values, one a parameter at most.
+    pub(super) set: Vec<(ParameterId, f64)>,
+}
+
+impl Choice {
+    /// Finds everything named.
+    ///
+    /// # Errors
+    /// What is not there, with the nearest that is; or a value that the file rules out.
+    pub(super) fn new(model: &Model, work: &Work) -> Result<Self, String> {
+        let named = work.scenarios.iter().map(|name| scenario(model, name)).collect::<Result<Vec<_>, _>>()?;
+        let all = 0..model.scenarios.len();
+        let scenarios = all.filter(|scenario| named.is_empty() || named.contains(scenario)).collect();
+        let mut set: Vec<(ParameterId, f64)> = Vec::new();
+        for (name, value) in &work.set {
+            let id = parameter(model, name)?;
+            if let Some(reason) = model.parameters.get(id.0).and_then(|parameter| ruled_out(parameter, *value)) {
+                return Err(reason);
+            }
+            set.retain(|(other, _)| *other != id);
+            set.push((id, *value));
+        }
+        Ok(Self { scenarios, set })
+    }
+}
+
+fn scenario(model: &Model, name: &str) -> Result<usize, String> {
+    let composed: String = name.nfc().collect();
+    let found = model.scenario(name).or_else(|| model.scenario(&composed));
+    let known = || model.scenarios.iter().map(|scenario| scenario.name.as_str());
+    found.ok_or_else(|| unknown("scenario", &composed, known))
+}
+
+fn parameter(model: &Model, name: &str) -> Result<ParameterId, String> {
+    let composed: String = name.nfc().collect();
+    match model.names.get(&composed) {
+        Some(Name::Parameter(id)) => Ok(*id),
+        _ => Err(unknown("parameter", &composed, || model.parameters.iter().map(|parameter| parameter.name.as_str()))),
+    }
+}
+
+/// That nothing of the kind has the name, and which has the nearest.
+fn unknown<'m, I: Iterator<Item = &'m str>>(kind: &str, name: &str, known: impl Fn() -> I) -> String {
+    match nearest(name, known()) {
+        Some(near) => format!("no {kind} is called \"{name}\"; did you mean \"{near}\"?"),
+        None if known().next().is_none() => format!("no {kind} is called \"{name}\"; the model has none"),
+        None => format!("no {kind} is called \"{name}\"; there are {}", listed(&known().collect::<Vec<_>>())),
+    }
+}
+
+/// Names that a message lists; more would bury it.
+const MOST_LISTED: usize = 12;
+
+fn listed(names: &[&str]) -> String {
+    let quoted: Vec<String> = names.iter().take(MOST_LISTED).map(|name| format!("\"{name}\"")).collect();
+    match names.len().saturating_sub(MOST_LISTED) {
+        0 => quoted.join(", "),
+        more => format!("{} and {more} more", quoted.join(", ")),
+    }
+}
+
+/// Why the parameter's own limits do not allow a value.
+fn ruled_out(parameter: &Parameter, value: f64) -> Option<String> {
+    let Parameter { name, min, max, .. } = parameter;
+    match (min, max) {
+        (Some(min), _) if value < *min => {
+            Some(format!("{name} = {value}: the model says that {name} is at least {min}"))
+        }
+        (_, Some(max)) if value > *max => {
+            Some(format!("{name} = {value}: the model says that {name} is at most {max}"))
+        }
+        _ => None,
+    }
+}

@@ -1,0 +1,191 @@
+//! `restpoint table`: the equilibria of each scenario.
+
+use std::path::Path;
+
+use crate::analysis::equilibria::{Budget, Problem, balance, find};
+use crate::diag::Diagnostic;
+use crate::diag::cleanse::cleanse;
+use crate::model::system::System;
+use crate::model::system::bounds::Bound;
+use crate::model::{Model, ParameterId};
+use crate::report::table::{Limits, Page, Scene, Solved, Style, Table, json, text};
+use crate::shell::clock::Deadline;
+use crate::shell::progress::Meter;
+use crate::shell::signal::Interrupt;
+use crate::shell::workers::Threads;
+
+use super::arguments::{BUDGET, Format, Options, Work};
+use super::choice::Choice;
+use super::model::{Original, Reading, pretty, read, remarks, wrong};
+use super::{Exit, Outcome, Screen};
+
+/// Boxes on one face, beyond which the search goes on to the next. A face of a model that can be settled at all takes
+/// tens to thousands.
+const BOXES: usize = 50_000;
+
+/// Finds and shows the equilibria of the model at `path`, or of the one compiled in.
+pub(super) fn table(path: Option<&Path>, work: &Work, options: &Options, screen: Screen) -> Outcome {
+    let original = match read(path) {
+        Reading::Unreadable(reason) => return Outcome::only(reason, Exit::Fault),
+        Reading::Wrong(sources, found) => return wrong(&found, &sources, options, screen.color_remarks),
+        Reading::Model(original) => original,
+    };
+    let model = &original.model;
+    let choice = match Choice::new(model, work) {
+        Ok(choice) => choice,
+        Err(reason) => return Outcome::only(format!("error: {}\n", cleanse(&reason)), Exit::Usage),
+    };
+    let prepared = match Prepared::new(model, &choice.set) {
+        Ok(prepared) => prepared,
+        Err(found) => return wrong(&found, &model.sources, options, screen.color_remarks),
+    };
+    let interrupt = Interrupt::listen();
+    let limits = Limits { seconds: work.budget.unwrap_or(BUDGET), boxes: BOXES };
+    let threads = work.threads.map_or_else(Threads::available, |count| Threads::new(count.into()));
+    let solver = Solver { model, prepared: &prepared, limits, threads, interrupt: &interrupt };
+    let scenes: Vec<Scene> = choice.scenarios.iter().map(|&scenario| solver.scene(scenario)).collect();
+    let command = command(path, work, options, &choice, model);
+    let table = Table {
+        model,
+        sha256: &original.sha256,
+        tables: &original.tables,
+        command: &command,
+        set: &choice.set,
+        bounds: &prepared.bounds,
+        limits,
+        scenes: &scenes,
+        interrupted: interrupt.is_raised(),
+    };
+    present(&table, &original, work, options, screen)
+}
+
+/// The equations of every scenario that has any.
+struct Prepared {
+    system: System,
+    bounds: Vec<Bound>,
+    /// For each scenario of the model, its plan, or why it has none.
+    plans: Vec<Plan>,
+}
+
+/// A plan's index, or what is wrong with the scenario.
+type Plan = Result<usize, Vec<Diagnostic>>;
+
+impl Prepared {
+    fn new(model: &Model, set: &[(ParameterId, f64)]) -> Result<Self, Vec<Diagnostic>> {
+        // The box is the same whatever scenarios are asked for, so all that can be are assembled.
+        if let Ok(system) = System::new(model, set) {
+            return Self::with_box(model, system, (0..model.scenarios.len()).map(Ok).collect());
+        }
+        let mut sound = Vec::new();
+        let mut plans = Vec::new();
+        for scenario in &model.scenarios {
+            let alone = Model { scenarios: vec![scenario.clone()], ..model.clone() };
+            plans.push(match System::new(&alone, set) {
+                Ok(_) => {
+                    sound.push(scenario.clone());
+                    Ok(sound.len() - 1)
+                }
+                Err(problems) => Err(problems),
+            });
+        }
+        let model = &Model { scenarios: sound, ..model.clone() };
+        Self::with_box(model, System::new(model, set)?, plans)
+    }
+
+    fn with_box(model: &Model, mut system: System, plans: Vec<Plan>) -> Result<Self, Vec<Diagnostic>> {
+        let bounds = system.bounds(model)?;
+        Ok(Self { system, bounds, plans })
+    }
+}
+
+/// All that the search of a scenario needs.
+struct Solver<'s> {
+    model: &'s Model,
+    prepared: &'s Prepared,
+    limits: Limits,
+    threads: Threads,
+    interrupt: &'s Interrupt,
+}
+
+impl Solver<'_> {
+    fn scene(&self, scenario: usize) -> Scene {
+        let outcome = match &self.prepared.plans[scenario] {
+            Ok(plan) => Ok(self.solve(*plan)),
+            Err(problem) => Err(problem.clone()),
+        };
+        Scene { scenario, outcome }
+    }
+
+    fn solve(&self, plan: usize) -> Solved {
+        let System { graph, plans } = &self.prepared.system;
+        let plan = &plans[plan];
+        // A graph of its own for each scenario, so that no result hangs on which others were asked for.
+        let graph = &mut graph.clone();
+        let rows = balance(graph, &plan.rows, &self.model.time);
+        let sides: Vec<[f64; 2]> = self.prepared.bounds.iter().map(|bound| [bound.lower, bound.upper]).collect();
+        let deadline = Deadline::after(self.limits.seconds);
+        let meter = Meter::start();
+        let budget = Budget {
+            boxes: self.limits.boxes,
+            stop: &|| self.interrupt.is_raised() || deadline.is_past(),
+            workers: &self.threads,
+            observer: Some(&|done| meter.add(done)),
+        };
+        let equilibria = find(graph, &Problem { rows: &rows, values: &plan.values, sides: &sides }, &budget);
+        Solved { values: plan.values.clone(), equilibria }
+    }
+}
+
+fn present(table: &Table<'_>, original: &Original, work: &Work, options: &Options, screen: Screen) -> Outcome {
+    let style = if options.ascii { Style::Ascii } else { Style::Unicode };
+    let result = match options.format {
+        Format::Text => text(table, Page { width: screen.width, style, color: screen.color }),
+        Format::Json => pretty(&json(table), options),
+    };
+    let problems = table.scenes.iter().filter_map(|scene| scene.outcome.as_ref().err());
+    let failed: Vec<Diagnostic> = problems.flatten().cloned().collect();
+    let is_proved = |scene: &Scene| scene.outcome.as_ref().is_ok_and(Solved::is_proved);
+    let exit = if table.interrupted {
+        Exit::Interrupted
+    } else if !failed.is_empty() {
+        Exit::Fault
+    } else if work.strict && !table.scenes.iter().all(is_proved) {
+        Exit::Unproved
+    } else {
+        Exit::Done
+    };
+    Outcome { result, remarks: remarks(&failed, &original.model.sources, screen.color_remarks), exit }
+}
+
+/// The command that makes the table, without the options that make no difference to it.
+fn command(path: Option<&Path>, work: &Work, options: &Options, choice: &Choice, model: &Model) -> String {
+    let mut words: Vec<String> = vec!["restpoint".to_owned()];
+    if let Some(path) = path {
+        words.extend(["table".to_owned(), quoted(&path.to_string_lossy())]);
+    }
+    if !work.scenarios.is_empty() {
+        let names = choice.scenarios.iter().filter_map(|&scenario| model.scenarios.get(scenario));
+        words.extend(names.flat_map(|scenario| ["--scenario".to_owned(), quoted(&scenario.name)]));
+    }
+    for &(id, value) in &choice.set {
+        let name = model.parameters.get(id.0).map_or("", |parameter| &parameter.name);
+        words.extend(["--set".to_owned(), quoted(&format!("{name}={value}"))]);
+    }
+    if let Some(seconds) = work.budget {
+        words.extend(["--budget".to_owned(), seconds.to_string()]);
+    }
+    if options.format == Format::Json {
+        words.extend(["--format".to_owned(), "json".to_owned()]);
+    }
+    words.join(" ")
+}
+
+/// A word as a shell reads it.
+fn quoted(word: &str) -> String {
+    let is_plain = |c: char| c.is_alphanumeric() || "-_./=+,:@%".contains(c);
+    if !word.is_empty() && word.chars().all(is_plain) {
+        word.to_owned()
+    } else {
+        format!("'{}'", word.replace('\'', "'\\''"))
+    }
+}

@@ -1,0 +1,113 @@
+//! The table as JSON: the contract's keys in the contract's order, then our own; see the [module's head](super).
+
+use serde_json::{Map, Value, json};
+
+use crate::analysis::equilibria::Unresolved;
+use crate::diag::Diagnostic;
+use crate::diag::render::position;
+use crate::model::{ParameterId, Scenario, TimeKind};
+use crate::num::interval::Interval;
+
+use super::columns::{COLUMNS, exact};
+use super::{Row, Scene, Solved, Table, words};
+
+/// The table as a JSON object.
+pub fn json(table: &Table<'_>) -> Value {
+    let ids = table.ids();
+    let scenarios = table.scenes.iter().zip(&ids).map(|(scene, ids)| match &scene.outcome {
+        Ok(solved) => scenario(table, scene, solved, ids),
+        Err(problems) => failed(table, scene, problems),
+    });
+    json!({
+        "tool": {"name": "restpoint", "version": env!("CARGO_PKG_VERSION")},
+        "model": model(table),
+        "scenarios": scenarios.collect::<Vec<_>>(),
+        "run": {
+            "command": table.command,
+            "set": table.set.iter().map(|&(id, value)| (name(table, id), exact(value))).collect::<Map<_, _>>(),
+            "budget": {"seconds": table.limits.seconds, "boxes": table.limits.boxes},
+            "interrupted": table.interrupted,
+        },
+        "caution": words::CAUTION,
+    })
+}
+
+fn model(table: &Table<'_>) -> Value {
+    let time = match table.model.time {
+        TimeKind::Continuous => "continuous",
+        TimeKind::Discrete { .. } => "discrete",
+    };
+    let mut model = json!({"title": table.model.title.value, "sha256": table.sha256, "time": time});
+    if let (Value::Object(model), false) = (&mut model, table.tables.is_empty()) {
+        let tables = table.tables.iter().map(|(file, sha256)| json!({"file": file, "sha256": sha256}));
+        model.insert("tables".to_owned(), tables.collect());
+    }
+    model
+}
+
+fn scenario(table: &Table<'_>, scene: &Scene, solved: &Solved, ids: &[String]) -> Value {
+    let values = table.model.parameters.iter().zip(&solved.values);
+    let unresolved: Vec<Value> = solved.equilibria.unresolved.iter().map(|one| self::unresolved(table, one)).collect();
+    json!({
+        "name": scenario_name(table, scene),
+        "parameters": values.map(|(parameter, &value)| (parameter.name.clone(), exact(value))).collect::<Map<_, _>>(),
+        "search": {
+            "box": search_box(table),
+            "complete": solved.equilibria.complete,
+            "beyond": words::beyond(&solved.equilibria),
+            "unresolved": unresolved,
+        },
+        "equilibria": table.rows(solved, ids).iter().map(equilibrium).collect::<Vec<_>>(),
+        "overlay": table.model.scenarios.get(scene.scenario).map(|scenario| overlay(table, scenario, solved)),
+    })
+}
+
+fn search_box(table: &Table<'_>) -> Value {
+    let sides = table.model.species.iter().zip(table.bounds);
+    Value::Object(sides.map(|(species, side)| (species.symbol.clone(), pair(side.lower, side.upper))).collect())
+}
+
+fn equilibrium(row: &Row<'_>) -> Value {
+    let entries = COLUMNS.iter().flat_map(|column| (column.exact)(row));
+    Value::Object(entries.map(|(key, value)| (key.to_owned(), value)).collect())
+}
+
+fn unresolved(table: &Table<'_>, one: &Unresolved) -> Value {
+    let side = |side: &Interval| pair(side.lo(), side.hi());
+    let species = table.model.species.iter().zip(&one.region);
+    let sides: Map<String, Value> =
+        species.map(|(species, interval)| (species.symbol.clone(), side(interval))).collect();
+    json!({"box": sides, "probably": words::probably(one.probably), "text": one.text})
+}
+
+fn pair(low: f64, high: f64) -> Value {
+    json!([exact(low), exact(high)])
+}
+
+fn overlay(table: &Table<'_>, scenario: &Scenario, solved: &Solved) -> Value {
+    let value = |id: ParameterId| (name(table, id), solved.values.get(id.0).map_or(Value::Null, |&x| exact(x)));
+    let names = |names: &mut dyn Iterator<Item = &String>| names.cloned().collect::<Vec<_>>();
+    json!({
+        "values": scenario.values.iter().map(|&(id, _)| value(id)).collect::<Map<_, _>>(),
+        "without": names(&mut scenario.without.iter().map(|name| &name.value)),
+        "harvest": names(&mut scenario.harvest.iter().map(|harvest| &harvest.name)),
+        "processes": names(&mut scenario.processes.iter().map(|process| &process.name)),
+    })
+}
+
+/// The contract has one error a scenario: the first.
+fn failed(table: &Table<'_>, scene: &Scene, problems: &[Diagnostic]) -> Value {
+    let error = problems.first().map(|problem| {
+        let (file, line, column) = position(&table.model.sources, problem.at);
+        json!({"file": file, "line": line, "column": column, "message": problem.message})
+    });
+    json!({"name": scenario_name(table, scene), "error": error})
+}
+
+fn scenario_name<'t>(table: &Table<'t>, scene: &Scene) -> &'t str {
+    table.model.scenarios.get(scene.scenario).map_or("", |scenario| &scenario.name)
+}
+
+fn name(table: &Table<'_>, id: ParameterId) -> String {
+    table.model.parameters.get(id.0).map_or_else(String::new, |parameter| parameter.name.clone())
+}
