@@ -2,7 +2,7 @@
 
 use std::path::Path;
 
-use crate::analysis::equilibria::{Budget, Problem, balance, find};
+use crate::analysis::equilibria::{Budget, Problem, all, balance};
 use crate::diag::Diagnostic;
 use crate::diag::cleanse::cleanse;
 use crate::model::system::System;
@@ -131,7 +131,7 @@ impl Solver<'_> {
             workers: &self.threads,
             observer: Some(&|done| meter.add(done)),
         };
-        let equilibria = find(graph, &Problem { rows: &rows, values: &plan.values, sides: &sides }, &budget);
+        let equilibria = all(graph, &Problem { rows: &rows, values: &plan.values, sides: &sides }, &budget);
         Solved { values: plan.values.clone(), equilibria }
     }
 }

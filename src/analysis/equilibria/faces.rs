@@ -110,8 +110,11 @@ impl Faces {
                 break;
             }
         }
-        let walk = |part: Part| Self { stack: vec![part], ..self.clone() };
-        self.stack.iter().cloned().chain(settled).map(walk).collect()
+        let mut parts: Vec<Part> = self.stack.iter().cloned().chain(settled).collect();
+        // Faces with many present take longest; begun last, one of them would keep all others waiting.
+        let present = |part: &Part| part.decisions.iter().filter(|&&decision| decision == Decision::Present).count();
+        parts.sort_by_key(|part| std::cmp::Reverse(present(part)));
+        parts.into_iter().map(|part| Self { stack: vec![part], ..self.clone() }).collect()
     }
 
     /// Puts both parts on the stack: species `i` present, where its rate has a value, and absent, where the box allows.

@@ -262,7 +262,8 @@ impl Whole {
         let limits = Limits { boxes: budget.boxes, stop: &stop };
         let found = Search::run(&tape, problem.values, region.clone(), &limits);
         budget.tell(1, 0);
-        self.boxes += found.boxes;
+        // Where nobody is present there is nothing to search.
+        self.boxes += if face.variables.is_empty() { 0 } else { found.boxes };
         self.none_above = self.none_above && above::is_empty(&tape, problem.values, &region);
         let remains = if found.open.is_empty() && found.continuum.is_empty() {
             Remains::default()
@@ -285,7 +286,7 @@ impl Whole {
         for candidate in &mut self.candidates {
             border::look_at_derivative(&tape, problem.values, &mut candidate.equilibrium);
         }
-        let unresolved = self.unresolved;
+        let unresolved = remains::gathered(self.unresolved);
         let mut list: Vec<Equilibrium> = self.candidates.into_iter().map(|candidate| candidate.equilibrium).collect();
         list.sort_by(order);
         let complete = unresolved.is_empty();

@@ -122,6 +122,21 @@ fn continuum(boxes: &[Region], face: &Face, n: usize, found: &Found) -> Unresolv
     Unresolved { witnesses, ..Unresolved::new(everywhere(&hull_of(boxes), face, n), Probably::Continuum, text) }
 }
 
+/// Drops a region that lies in another of the same kind: one place may stay open on several faces.
+pub(super) fn gathered(all: Vec<Unresolved>) -> Vec<Unresolved> {
+    let mut kept: Vec<Unresolved> = Vec::new();
+    for open in all {
+        let within = |inner: &Unresolved, outer: &Unresolved| {
+            inner.probably == outer.probably && inner.region.iter().zip(&outer.region).all(|(a, b)| a.subset_of(*b))
+        };
+        if !kept.iter().any(|other| within(&open, other)) {
+            kept.retain(|other| !within(other, &open));
+            kept.push(open);
+        }
+    }
+    kept
+}
+
 /// What a heap is that the bordered equations could not decide.
 fn guess(equations: &mut Equations<'_>, heap: &[Interval]) -> (Probably, String) {
     let domain = equations.linear(heap).domain;

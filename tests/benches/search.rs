@@ -1,0 +1,211 @@
+//! The certified search over the shipped scenarios, the published cases and random webs, one thread: time and boxes; beside
+//! it a careful multistart on the same faces, with what it misses; and what a second thread gains.
+
+#![allow(clippy::print_stdout, clippy::panic, reason = "a benchmark prints its table, and fails by panicking")]
+
+#[path = "../common/mod.rs"]
+#[allow(unused_imports, reason = "shared with the tests")]
+mod common;
+
+use std::collections::BTreeMap;
+use std::hint::black_box;
+use std::time::Instant;
+
+use common::cases;
+use common::families::{Family, webs};
+use common::solve::{Method, meet, solve_within};
+use common::text::Read;
+use common::workers::Two;
+use restpoint::analysis::equilibria::{Budget, Equilibria, OneByOne, Workers};
+
+const BUDGET: Budget<'_> = Budget { boxes: 50_000, stop: &|| false, workers: &OneByOne, observer: None };
+
+fn main() {
+    by_species();
+    named_webs();
+    random_webs();
+    second_thread();
+}
+
+/// The best of some runs in milliseconds, and what was found.
+fn timed(read: &mut Read, scenario: usize, budget: &Budget<'_>, runs: usize) -> (f64, Equilibria) {
+    let fresh = read.system.graph.clone();
+    let mut best = f64::INFINITY;
+    let mut found = None;
+    for _ in 0..runs {
+        read.system.graph = fresh.clone();
+        let start = Instant::now();
+        found = Some(black_box(solve_within(read, scenario, Method::Certified, budget)));
+        best = best.min(start.elapsed().as_secs_f64() * 1e3);
+    }
+    (best, found.unwrap_or_else(|| panic!("at least one run")))
+}
+
+fn median(values: &mut [f64]) -> f64 {
+    values.sort_by(f64::total_cmp);
+    values.get(values.len() / 2).copied().unwrap_or(f64::NAN)
+}
+
+/// Medians over all published cases with their scenarios, and the shipped models, by number of species.
+fn by_species() {
+    let mut times: BTreeMap<usize, Vec<f64>> = BTreeMap::new();
+    for case in cases::all().iter().filter(|case| case.species.len() <= 6) {
+        let mut read = case.text().read();
+        for scenario in 0..read.system.plans.len() {
+            let (time, _) = timed(&mut read, scenario, &BUDGET, 5);
+            times.entry(case.species.len()).or_default().push(time);
+        }
+    }
+    println!("\npublished cases and their scenarios: certified search, one thread, ms");
+    println!("  species  searches    median   largest   to reach (median)");
+    for (n, times) in &mut times {
+        let largest = times.iter().copied().fold(0.0, f64::max);
+        let goal = match n {
+            1 | 2 => "0.12",
+            3 => "0.3",
+            4 => "1.2",
+            _ => "",
+        };
+        println!("  {n:>7}  {:>8}  {:>8.3}  {largest:>8.3}   {goal}", times.len(), median(times));
+    }
+}
+
+fn named_webs() {
+    println!("\nnamed webs: certified search, one thread, and a multistart on the same faces");
+    println!("  {:<24} {:>6} {:>6} {:>9} {:>9}   to reach", "", "roots", "boxes", "ms", "complete");
+    let bazykin = common::families::examples().into_iter().find(|family| family.name == "Bazykin");
+    let webs = [
+        (webs::four_species(), "35 boxes, 1.2 ms"),
+        (webs::six_species(), "381 boxes, 12 ms"),
+        (webs::dense_six_species(), "2465 boxes"),
+    ];
+    for (family, goal) in bazykin.into_iter().map(|family| (family, "7 boxes, 0.12 ms")).chain(webs) {
+        let mut read = family.text.read();
+        let (time, found) = timed(&mut read, 0, &BUDGET, 5);
+        println!(
+            "  {:<24} {:>6} {:>6} {time:>9.3} {:>9}   {goal}",
+            family.name,
+            found.list.len(),
+            found.boxes,
+            found.complete
+        );
+        for starts in [50, 1000] {
+            let (time, missed) = multistart(&mut family.text.read(), &found, starts);
+            println!("    {starts:>5} starts a face: {time:>9.3} ms, {missed} of {} missed", found.list.len());
+        }
+    }
+}
+
+/// Newton's method from uniform and log-uniform starts on the full rows divided by what is present: every face's own
+/// equations, as a careful script would have them.
+fn multistart(read: &mut Read, known: &Equilibria, starts: usize) -> (f64, usize) {
+    let begun = Instant::now();
+    let n = read.model.species.len();
+    let mut hits: Vec<Vec<f64>> = Vec::new();
+    let mut source = common::Source(1);
+    let graph = &mut read.system.graph;
+    let plan = read.system.plans[0].clone();
+    for face in 0..1usize << n {
+        let present: Vec<usize> = (0..n).filter(|i| face >> i & 1 == 1).collect();
+        let rows: Vec<_> =
+            present.iter().map(|&i| graph.divide(plan.rows[i], i).quotient.unwrap_or(plan.rows[i])).collect();
+        let tape = restpoint::expr::tape::Tape::new(graph, &rows);
+        let mut run = tape.start_gradient(&plan.values);
+        for start in 0..starts {
+            let mut x = vec![0.0; n];
+            for &i in &present {
+                let upper = read.model.species[i].upper.unwrap_or(1.0);
+                let share = source.unit();
+                x[i] = if start % 2 == 0 { upper * share } else { upper * 10f64.powf(-4.0 * share) };
+            }
+            if newton(&mut run, &mut x, &present) && x.iter().all(|v| *v >= 0.0) {
+                hits.push(x);
+            }
+        }
+    }
+    let hit = |e: &restpoint::analysis::equilibria::Equilibrium| {
+        hits.iter().any(|x| x.iter().zip(&e.state).all(|(a, b)| (a - b).abs() <= 1e-7 * b.abs().max(1e-9)))
+    };
+    (begun.elapsed().as_secs_f64() * 1e3, known.list.iter().filter(|e| !hit(e)).count())
+}
+
+fn newton(run: &mut restpoint::expr::tape::gradient::GradientRun<'_, f64>, x: &mut [f64], present: &[usize]) -> bool {
+    let k = present.len();
+    for _ in 0..60 {
+        run.at(x);
+        let mut slopes = vec![0.0; k * k];
+        for i in 0..k {
+            if let Some(row) = run.gradient(i) {
+                present.iter().enumerate().for_each(|(j, &p)| slopes[i * k + j] = row[p]);
+            }
+        }
+        let Some(inverse) = restpoint::num::dense::inverse(&slopes, k) else { return false };
+        let mut largest = 0.0f64;
+        for (i, &p) in present.iter().enumerate() {
+            let step: f64 = (0..k).map(|j| inverse[i * k + j] * run.output(j)).sum();
+            x[p] -= step;
+            largest = largest.max(step.abs() / x[p].abs().max(1e-10));
+        }
+        if !x.iter().all(|v| v.is_finite()) {
+            return false;
+        }
+        if largest < 1e-13 {
+            return true;
+        }
+    }
+    false
+}
+
+fn random_webs() {
+    let mut times = Vec::new();
+    let mut boxes = Vec::new();
+    let mut incomplete = 0;
+    for seed in 1..=200 {
+        let (time, found) = timed(&mut webs::web(6, seed).text.read(), 0, &BUDGET, 1);
+        times.push(time);
+        boxes.push(found.boxes as f64);
+        incomplete += usize::from(!found.complete);
+    }
+    let largest = times.iter().copied().fold(0.0, f64::max);
+    println!(
+        "\nrandom six-species webs, 200 seeds: median {:.2} ms (to reach 14), largest {largest:.1} ms (200),",
+        median(&mut times)
+    );
+    println!("  median {} boxes, {incomplete} not complete", median(&mut boxes));
+}
+
+/// Two threads against one, as a share of what a loop of plain arithmetic gains in the same run.
+fn second_thread() {
+    let families: Vec<Family> = (1..=6).map(|seed| webs::web(6, seed)).chain([webs::dense_six_species()]).collect();
+    let two = Budget { workers: &Two, ..BUDGET };
+    let (mut alone, mut together) = (0.0, 0.0);
+    for family in &families {
+        let mut read = family.text.read();
+        let (one, found) = timed(&mut read, 0, &BUDGET, 7);
+        let (both, same) = timed(&mut family.text.read(), 0, &two, 7);
+        assert!(found.list.iter().zip(&same.list).all(|(a, b)| meet(&a.enclosure, &b.enclosure)));
+        alone += one;
+        together += both;
+    }
+    let arithmetic = |workers: &dyn Workers| {
+        let mut best = f64::INFINITY;
+        for _ in 0..7 {
+            let start = Instant::now();
+            workers.run(32, &|job| {
+                let mut x = job as f64 + 1.5;
+                for _ in 0..400_000 {
+                    x = x * 0.999_999 + 1.0 / (1.0 + x * x);
+                }
+                black_box(x);
+            });
+            best = best.min(start.elapsed().as_secs_f64());
+        }
+        best
+    };
+    let plain = arithmetic(&OneByOne) / arithmetic(&Two);
+    let gain = alone / together;
+    println!(
+        "\ntwo threads gain {gain:.2}x on the search, {plain:.2}x on plain arithmetic: {:.2} of it (to reach 0.85)",
+        gain / plain
+    );
+}
