@@ -31,12 +31,12 @@ fn first_cells(heading: &str) -> Vec<&'static str> {
     rows.map(|row| row.split('`').nth(1).unwrap()).collect()
 }
 
-/// What `restpoint check velmo.yaml` writes to both streams, and how it ends.
-fn checked(model: &str) -> (String, Option<i32>) {
+/// What `restpoint COMMAND velmo.yaml` writes to both streams, and how it ends.
+fn run(command: &str, model: &str) -> (String, Option<i32>) {
     let folder = tempfile::tempdir().unwrap();
     fs::write(folder.path().join("velmo.yaml"), model).unwrap();
-    let mut command = Command::new(env!("CARGO_BIN_EXE_restpoint"));
-    let run = command.args(["check", "velmo.yaml"]).current_dir(folder.path()).output().unwrap();
+    let mut program = Command::new(env!("CARGO_BIN_EXE_restpoint"));
+    let run = program.args([command, "velmo.yaml"]).current_dir(folder.path()).output().unwrap();
     (String::from_utf8([run.stdout, run.stderr].concat()).unwrap(), run.status.code())
 }
 
@@ -52,10 +52,11 @@ fn the_first_model_is_sound_and_raises_no_warning() {
 }
 
 #[test]
-fn what_check_shows_is_current() {
-    let [shown, wrong] = blocks("text")[..] else { panic!("two blocks of output") };
-    assert_eq!(checked(&model()), (format!("{shown}\n"), Some(0)));
-    assert_eq!(checked(&model().replace("a*H*P", "a*h*P")), (format!("{wrong}\n"), Some(1)));
+fn what_is_shown_is_current() {
+    let [shown, wrong, table] = blocks("text")[..] else { panic!("three blocks of output") };
+    assert_eq!(run("check", &model()), (format!("{shown}\n"), Some(0)));
+    assert_eq!(run("check", &model().replace("a*H*P", "a*h*P")), (format!("{wrong}\n"), Some(1)));
+    assert_eq!(run("table", &model()), (format!("{table}\n"), Some(0)));
 }
 
 #[test]
@@ -90,7 +91,14 @@ fn every_key_listed_is_a_key() {
 #[test]
 fn every_exit_code_is_as_listed() {
     use restpoint::cli::Exit;
-    for (exit, meaning) in [(Exit::Done, "done"), (Exit::Fault, "the model"), (Exit::Usage, "the command line")] {
+    let listed = [
+        (Exit::Done, "done"),
+        (Exit::Fault, "the model"),
+        (Exit::Usage, "the command line"),
+        (Exit::Unproved, "with `--strict`"),
+        (Exit::Interrupted, "interrupted"),
+    ];
+    for (exit, meaning) in listed {
         assert!(README.contains(&format!("\n| {} | {meaning}", exit as u8)), "{exit:?}");
     }
 }
