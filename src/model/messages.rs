@@ -3,39 +3,19 @@
 //! A row has what is wrong, what was expected and what to do, with `{0}`, `{1}` … for the values at hand.
 //! [`Message::at`] makes the diagnostic. To say something new, add a row here and a file of its name to
 //! `tests/files/errors`; the tests fail on a row that no file provokes. Slips inside formulas have their own words in
-//! `expr::parse`.
+//! `expr::slip`, units in `units::message`.
 
 use std::fmt::Display;
 
-use crate::diag::cleanse::clip;
+use crate::diag::wording::{fill, wording};
 use crate::diag::{Diagnostic, Location};
-
-/// Characters of a value from the file that a message repeats.
-const VALUE_LIMIT: usize = 200;
 
 /// Digits of a number that are written without an exponent.
 const DIGITS: usize = 20;
 
-macro_rules! messages {
-    ($($name:ident: $what:literal, $expected:literal, $help:literal;)*) => {
-        /// One thing that can be wrong.
-        #[derive(Clone, Copy, Debug, PartialEq, Eq)]
-        pub(super) enum Message { $(#[doc = $what] $name),* }
-
-        impl Message {
-            /// Every row of the table.
-            #[cfg(test)]
-            pub(super) const ALL: &'static [Self] = &[$(Self::$name),*];
-
-            /// What is wrong, what was expected, what to do.
-            pub(super) const fn row(self) -> [&'static str; 3] {
-                match self { $(Self::$name => [$what, $expected, $help]),* }
-            }
-        }
-    };
-}
-
-messages! {
+wording! {
+/// One thing that can be wrong.
+pub(super) enum Message {
     // The file as a whole.
     FileTooLarge: "the file is {0} bytes long; at most {1} are read", "", "move large tables into CSV files and name them in the model";
     NotUtf8: "the text is not valid UTF-8 from here on", "", "save the file with the encoding UTF-8";
@@ -173,6 +153,7 @@ messages! {
     DrawOutside: "the value {0} of \"{1}\" lies outside the limits of the model: {2}", "", "delete the row, or change \"min\" or \"max\" in the model";
     MoreErrors: "there are {0} more errors", "", "mend the first ones and check again";
 }
+}
 
 impl Message {
     /// The diagnostic at a place, with the values in order; long values are clipped.
@@ -186,22 +167,4 @@ impl Message {
 pub(super) fn digits(value: f64) -> String {
     let plain = value.to_string();
     if plain.len() <= DIGITS { plain } else { format!("{value:e}") }
-}
-
-fn fill(template: &str, values: &[&dyn Display]) -> String {
-    let mut text = String::with_capacity(template.len());
-    let mut rest = template;
-    while let Some(open) = rest.find('{') {
-        let index = rest[open + 1..].chars().next().and_then(|c| c.to_digit(10));
-        let value = index.filter(|_| rest[open + 2..].starts_with('}')).and_then(|index| values.get(index as usize));
-        text.push_str(&rest[..open]);
-        if let Some(value) = value {
-            text.push_str(&clip(&value.to_string(), VALUE_LIMIT));
-            rest = &rest[open + 3..];
-        } else {
-            text.push('{');
-            rest = &rest[open + 1..];
-        }
-    }
-    text + rest
 }

@@ -5,7 +5,7 @@
 //! `max`, `clamp` and `ramp`. An exponent that is a constant expression of parameters counts with its base value, so that
 //! `S^n/(H^n + S^n)` is checked at the model's own n. What each formula of a model must be in is [`places`](super::places).
 
-use super::message::{Piece, Reason};
+use super::message::{Piece, Reason, Words};
 use super::report::{Report, names_in};
 use super::solve::{Solver, Term};
 use crate::diag::Location;
@@ -261,7 +261,7 @@ impl<'m> Walker<'m> {
             Name::Shorthand(_) => return None,
         };
         let Quantity::Of(term) = quantity else { return None };
-        Some((self.solver.told_at(term)?, format!("the unit of \"{text}\" follows from here")))
+        Some((self.solver.told_at(term)?, Words::FollowsFromHere.remark(&[text])))
     }
 
     /// Forgets what was concluded about a name that a warning is about, so that one slip is told once.
