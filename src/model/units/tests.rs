@@ -24,15 +24,15 @@ fn found(name: &str) -> (Vec<Diagnostic>, Sources) {
 
 #[test]
 fn every_file_says_what_it_should() {
-    let names =
-        fs::read_dir(folder()).expect("the folder").filter_map(|entry| entry.ok()?.file_name().into_string().ok());
-    let mut names: Vec<String> = names.filter(|name| name.ends_with(".yaml")).collect();
+    let entries = fs::read_dir(folder()).expect("the folder").map(|entry| entry.expect("a file").path());
+    let mut names: Vec<PathBuf> = entries.filter(|path| path.extension() == Some("yaml".as_ref())).collect();
     names.sort();
     let mut wrong = Vec::new();
-    for name in names {
+    for path in names {
+        let name = path.file_name().unwrap_or_default().to_string_lossy();
         let (found, sources) = found(&name);
         let said: String = found.iter().map(|diagnostic| render(diagnostic, &sources, false)).collect();
-        let text = fs::read_to_string(folder().join(name.replace(".yaml", ".txt"))).unwrap_or_default();
+        let text = fs::read_to_string(path.with_extension("txt")).unwrap_or_default();
         if said != text || said.is_empty() {
             wrong.push(format!("{name}: expected\n{text}\nbut it says\n{said}"));
         }
