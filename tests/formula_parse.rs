@@ -134,6 +134,7 @@ fn reading_goes_on_behind_what_does_not_belong() {
     };
     check("r & ** N", &["\"&\" is not part of a formula"]);
     check("r & * / N", &["\"&\" is not part of a formula", "an operand is missing before this operator"]);
+    check("dN/dt == 2*N", &["\"=\" is not part of a formula"]);
     check("r, 2N", &["a comma does not belong here", "an operator is missing between these two"]);
 }
 

@@ -274,6 +274,14 @@ impl Parser {
                 let right = self.product();
                 return self.join(BinaryOp::Sub, left, right);
             }
+            Some(Token::Strange('=')) => {
+                self.report(Slip::strange('=', span));
+                while self.peek() == Some(&Token::Strange('=')) {
+                    self.at += 1;
+                }
+                // What stands on the left, most often dN/dt, need not be told off as well.
+                return self.sum();
+            }
             Some(Token::Strange(c)) => self.report(Slip::strange(c, span)),
             // Nothing but a comma is left: what begins or joins operands was taken before.
             _ => self.say(Words::StrayComma, span),
@@ -292,7 +300,10 @@ impl Parser {
     /// An operand stands directly behind another: reads it as a product, and says so.
     fn missing_operator(&mut self, left: Tree) -> Tree {
         let span = Span::new(left.expr.span.start, self.span().end);
-        self.report(Slip::missing_operator(span, &left.expr.kind, self.peek()));
+        // Behind a slip, what is missing is most likely part of it.
+        if left.expr.kind != ExprKind::Hole {
+            self.report(Slip::missing_operator(span, &left.expr.kind, self.peek()));
+        }
         let right = self.power();
         self.join(BinaryOp::Mul, left, right)
     }

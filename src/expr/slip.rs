@@ -50,6 +50,7 @@ pub(crate) enum Words {
     StrayComma: "a comma does not belong here", "an operator or the end", "commas stand only between the arguments of a function; a decimal comma must be a point";
     Semicolon: "arguments are separated by commas", ",", "write \",\"; a decimal comma must be a point";
     // Characters that formulas do not have.
+    EqualsSign: "\"{0}\" is not part of a formula", "an operator or the end", "write only what stands on its right; for a comparison switch smoothly with ramp(x, lo, hi), min, max or clamp";
     Comparison: "\"{0}\" is not part of a formula", "an operator or the end", "formulas have no comparisons: switch smoothly with ramp(x, lo, hi), min, max or clamp";
     PercentSign: "\"{0}\" is not part of a formula", "an operator or the end", "write 5 % as 0.05";
     Bracket: "\"{0}\" is not part of a formula", "an operator or the end", "use the parentheses ( and )";
@@ -58,6 +59,8 @@ pub(crate) enum Words {
     // Functions.
     Log: "\"{0}\" is not a function", "an operator before the parenthesis", "write ln(x) for the natural logarithm, log10(x) for the decimal one";
     Pow: "\"{0}\" is not a function", "an operator before the parenthesis", "write a power as a^b";
+    Periodic: "\"{0}\" is not a function", "a formula without time", "a model cannot depend on time: put the average over the season in its place";
+    Switch: "\"{0}\" is not a function", "an operator before the parenthesis", "switch smoothly with ramp(x, lo, hi), min, max or clamp";
     FunctionNear: "\"{0}\" is not a function", "an operator before the parenthesis", "did you mean \"{1}\"? For a product write {0}*(…)";
     NotAFunction: "\"{0}\" is not a function", "an operator before the parenthesis", "for a product write {0}*(…)";
     TooFewArguments: "\"{0}\" takes {1}, and {2} here", "{3}", "write {3}: {4}";
@@ -77,7 +80,8 @@ impl Slip {
     /// A character that formulas do not have.
     pub(super) fn strange(c: char, span: Span) -> Self {
         match c {
-            '=' | '<' | '>' | '!' | '≤' | '≥' => Words::Comparison.at(span, &[&c]),
+            '=' => Words::EqualsSign.at(span, &[&c]),
+            '<' | '>' | '!' | '≤' | '≥' => Words::Comparison.at(span, &[&c]),
             '%' => Words::PercentSign.at(span, &[&c]),
             '[' | ']' | '{' | '}' => Words::Bracket.at(span, &[&c]),
             '"' | '\'' => Words::QuotationMark.at(span, &[&c]),
@@ -100,6 +104,8 @@ impl Slip {
         match (name, nearest(name, BUILTINS.iter().map(|row| row.name))) {
             ("log", _) => Words::Log.at(span, &[&name]),
             ("pow", _) => Words::Pow.at(span, &[&name]),
+            ("sin" | "cos" | "tan", _) => Words::Periodic.at(span, &[&name]),
+            ("if" | "ifelse" | "where" | "step", _) => Words::Switch.at(span, &[&name]),
             (_, Some(function)) => Words::FunctionNear.at(span, &[&name, &function]),
             (_, None) => Words::NotAFunction.at(span, &[&name]),
         }

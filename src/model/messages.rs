@@ -35,11 +35,16 @@ pub(super) enum Message {
     SplitFormula: "the comma splits the formula \"{0}\" in two", "", "inside braces quote a formula that has a comma: \"{0}\"";
     SplitNumber: "the comma splits the number \"{0}\" in two", "", "write the decimal point: {1}";
     KeyAlone: "\"{0}\" stands without a value", "\"{0}: …\"", "give it a value; if the comma before it belongs to a text, quote that text";
+    ColonSpace: "no space follows the colon in \"{0}\"", "\"{1}: …\"", "write {1}: {2}";
     // The grammar of YAML.
     YamlSplitFormula: "this cannot be read as YAML: the comma splits a formula inside braces", "", "inside braces quote a formula that has a comma: \"{0}\"";
     YamlColon: "this cannot be read as YAML: a second colon on the line", "", "quote the text if the colon belongs to it: \"{0}\"";
+    YamlBraces: "this cannot be read as YAML: a second colon on the line", "", "a map inside a line stands in braces: {{0}}; if the colon belongs to a text, quote it";
+    YamlDeeper: "this cannot be read as YAML: the line is indented deeper than the one before it", "a key in line with those beside it", "align the keys of one map in one column";
+    YamlDash: "this cannot be read as YAML: an entry of a list stands among keys", "a key", "delete the \"- \" before it";
     YamlTab: "this cannot be read as YAML: a tab stands where only spaces may indent", "spaces", "replace the tab by spaces";
     YamlMapOpen: "this cannot be read as YAML: the braces that open here are not closed properly", "", "close with \"}\", and put a comma between entries";
+    YamlComma: "this cannot be read as YAML: a comma is missing before this entry", "a comma, then the entry", "put commas between the entries inside braces";
     YamlListOpen: "this cannot be read as YAML: the bracket that opens here is not closed properly", "", "close with \"]\", and put a comma between entries";
     YamlQuoteOpen: "this cannot be read as YAML: the quotation mark that opens here is never closed", "", "close the quotation; inside single quotes write a single quote twice";
     YamlEscape: "this cannot be read as YAML: the backslash begins no known escape", "", "write two backslashes, or use single quotes";

@@ -94,7 +94,8 @@ impl<'t> Reader<'t> {
     fn operator(&mut self) -> Option<f64> {
         self.skip_spaces();
         let rest = self.rest();
-        let is_per = rest.strip_prefix("per").is_some_and(|after| after.starts_with(char::is_whitespace));
+        let is_per =
+            rest.strip_prefix("per").is_some_and(|after| after.is_empty() || after.starts_with(char::is_whitespace));
         let (length, power) = match self.peek()? {
             '/' => (1, -1.0),
             c @ ('*' | '·' | '⋅' | '×' | '.') => (c.len_utf8(), 1.0),
