@@ -8,15 +8,13 @@ use std::fmt::Display;
 
 use super::known;
 use super::message::Words;
-use super::unit::Unit;
+use super::unit::{LARGEST_POWER, Unit};
 use crate::diag::Span;
 
 /// Longest unit that is read, in bytes; longer ones are some other text in the wrong place.
 const LONGEST: usize = 200;
 /// Most brackets inside one another.
 const DEEPEST: usize = 16;
-/// Largest power; what is larger is a slip, and would take sizes out of range.
-const LARGEST_POWER: f64 = 100.0;
 
 /// Why a text is not a unit.
 #[derive(Clone, Debug, PartialEq)]
