@@ -127,6 +127,18 @@ fn every_slip_is_reported_not_the_first_alone() {
 }
 
 #[test]
+fn reading_goes_on_behind_what_does_not_belong() {
+    let check = |text: &str, expected: &[&str]| {
+        let messages: Vec<String> = parse(text).1.into_iter().map(|slip| slip.message).collect();
+        assert_eq!(messages, expected, "{text}");
+    };
+    check("r & ** N", &["\"&\" is not part of a formula"]);
+    check("r & * / N", &["\"&\" is not part of a formula", "an operand is missing before this operator"]);
+    check("dN/dt == 2*N", &["\"=\" is not part of a formula"]);
+    check("r, 2N", &["a comma does not belong here", "an operator is missing between these two"]);
+}
+
+#[test]
 fn limits_hold_without_a_stack_overflow() {
     let refused = |text: &str, message: &str| {
         let (_, slips) = parse(text);

@@ -6,6 +6,7 @@
 pub mod cleanse;
 pub mod nearest;
 pub mod render;
+pub(crate) mod wording;
 
 /// A half-open range of bytes in one text.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, Hash, Default, PartialOrd, Ord)]

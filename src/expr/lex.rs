@@ -34,6 +34,13 @@ pub(super) enum Token {
     Strange(char),
 }
 
+impl Token {
+    /// Whether it joins two operands.
+    pub(super) fn is_operator(&self) -> bool {
+        matches!(self, Self::Plus | Self::Minus | Self::Star | Self::DoubleStar | Self::Slash | Self::Caret)
+    }
+}
+
 /// Splits a formula into tokens with the bytes that they came from.
 pub(super) fn tokens(text: &str) -> Vec<(Token, Span)> {
     let mut found = Vec::new();

@@ -6,7 +6,7 @@
 
 use super::ast::{BinaryOp, Builtin, Expr, ExprKind};
 use super::lex::{Token, tokens};
-use super::slip::Slip;
+use super::slip::{Slip, Words};
 use crate::diag::Span;
 
 /// How deep parentheses, calls, signs and exponents may nest.
@@ -22,7 +22,7 @@ pub fn parse(text: &str) -> (Expr, Vec<Slip>) {
         Parser { tokens: tokens(text), at: 0, end: text.len(), slips: Vec::new(), depth: 0, refused: false };
     if parser.tokens.is_empty() {
         let span = Span::new(0, text.len());
-        parser.slip(span, "the formula is empty", "a formula", "write 0 if nothing is meant");
+        parser.report(Words::Empty.at(span, &[]));
         return (Expr { kind: ExprKind::Hole, span }, parser.slips);
     }
     let mut tree = parser.sum();
@@ -62,8 +62,8 @@ impl Parser {
         self.at.checked_sub(1).and_then(|i| self.tokens.get(i)).map_or(0, |(_, span)| span.end)
     }
 
-    fn slip(&mut self, span: Span, message: &str, expected: &str, help: &str) {
-        self.report(Slip::new(span, message, expected, help));
+    fn say(&mut self, words: Words, span: Span) {
+        self.report(words.at(span, &[]));
     }
 
     fn report(&mut self, slip: Slip) {
@@ -73,8 +73,8 @@ impl Parser {
     }
 
     /// Says once that a limit is passed, and drops the rest of the formula.
-    fn refuse(&mut self, span: Span, message: &str, help: &str) -> Tree {
-        self.slip(span, message, "a shorter formula", help);
+    fn refuse(&mut self, words: Words, span: Span, limit: usize) -> Tree {
+        self.report(words.at(span, &[&limit]));
         self.refused = true;
         self.at = self.tokens.len();
         hole(span)
@@ -121,7 +121,7 @@ impl Parser {
         match self.peek() {
             Some(Token::Minus) => {}
             Some(Token::Strange('−' | '–')) => {
-                self.slip(start, "this dash is not a minus sign", "-", "write the plain hyphen \"-\"");
+                self.say(Words::Dash, start);
             }
             _ => return self.power(),
         }
@@ -138,7 +138,7 @@ impl Parser {
             Some(Token::Caret) => {}
             Some(Token::DoubleStar) => {
                 let span = self.span();
-                self.slip(span, "\"**\" is not an operator", "^", "write a power as a^b");
+                self.say(Words::DoubleStar, span);
             }
             _ => return base,
         }
@@ -156,12 +156,7 @@ impl Parser {
             Some(Token::Name(name)) => self.name(name, span),
             Some(Token::Open) => self.group(span),
             Some(Token::Plus) => {
-                self.slip(
-                    span,
-                    "a sign \"+\" before a term is not needed",
-                    "a number, a name or \"(\"",
-                    "leave it out",
-                );
+                self.say(Words::PlusSign, span);
                 self.at += 1;
                 self.deeper(span, Self::operand).unwrap_or_else(|| hole(span))
             }
@@ -172,15 +167,13 @@ impl Parser {
     fn number(&mut self, value: f64, span: Span) -> Tree {
         self.at += 1;
         if !value.is_finite() {
-            let help = "the largest number is about 1.8e308; choose larger units";
-            self.slip(span, "this number is too large", "a number below 1.8e308", help);
+            self.say(Words::NumberTooLarge, span);
             return hole(span);
         }
         if self.is_decimal_comma(span) {
             let (_, fraction) = self.tokens[self.at + 1];
             let whole = span.to(fraction);
-            let help = "write a decimal point: \"1.5\", not \"1,5\"";
-            self.slip(whole, "a comma stands where a decimal point belongs", "a decimal point", help);
+            self.say(Words::DecimalComma, whole);
             self.at += 2;
             return leaf(ExprKind::Number(value), whole);
         }
@@ -235,12 +228,7 @@ impl Parser {
             }
             match self.peek() {
                 Some(Token::Comma) => {}
-                Some(Token::Strange(';')) => self.slip(
-                    self.span(),
-                    "arguments are separated by commas",
-                    ",",
-                    "write \",\"; a decimal comma must be a point",
-                ),
+                Some(Token::Strange(';')) => self.say(Words::Semicolon, self.span()),
                 _ => return found,
             }
             self.at += 1;
@@ -265,7 +253,7 @@ impl Parser {
         if self.peek() == Some(&Token::Close) {
             self.at += 1;
         } else {
-            self.slip(open, "this parenthesis is never closed", "a \")\" later on", "add the missing \")\"");
+            self.say(Words::NeverClosed, open);
         }
         self.previous_end()
     }
@@ -279,28 +267,31 @@ impl Parser {
     fn leftover(&mut self, left: Tree) -> Tree {
         let span = self.span();
         match self.peek().cloned() {
-            Some(Token::Close) => {
-                self.slip(span, "no parenthesis is open here", "an operator or the end", "remove this \")\"");
-            }
-            Some(Token::Comma) => {
-                let help = "commas stand only between the arguments of a function; a decimal comma must be a point";
-                self.slip(span, "a comma does not belong here", "an operator or the end", help);
-            }
+            Some(Token::Close) => self.say(Words::NoneOpen, span),
             Some(Token::Strange('−' | '–')) => {
-                self.slip(span, "this dash is not a minus sign", "-", "write the plain hyphen \"-\"");
+                self.say(Words::Dash, span);
                 self.at += 1;
                 let right = self.product();
                 return self.join(BinaryOp::Sub, left, right);
             }
+            Some(Token::Strange('=')) => {
+                self.report(Slip::strange('=', span));
+                while self.peek() == Some(&Token::Strange('=')) {
+                    self.at += 1;
+                }
+                // What stands on the left, most often dN/dt, need not be told off as well.
+                return self.sum();
+            }
             Some(Token::Strange(c)) => self.report(Slip::strange(c, span)),
-            _ => self.slip(span, "this does not belong here", "an operator or the end", "put an operator before it"),
+            // Nothing but a comma is left: what begins or joins operands was taken before.
+            _ => self.say(Words::StrayComma, span),
         }
         self.at += 1;
         // Read on, so that slips in the rest are found too.
-        if matches!(self.peek(), Some(Token::Plus | Token::Minus | Token::Star | Token::Slash | Token::Caret)) {
+        if self.peek().is_some_and(Token::is_operator) {
             self.at += 1;
         }
-        if matches!(self.peek(), Some(Token::Number(_) | Token::Name(_) | Token::Open | Token::Minus)) {
+        if !matches!(self.peek(), None | Some(Token::Close | Token::Comma | Token::Strange(_))) {
             let _ = self.sum();
         }
         left
@@ -309,7 +300,10 @@ impl Parser {
     /// An operand stands directly behind another: reads it as a product, and says so.
     fn missing_operator(&mut self, left: Tree) -> Tree {
         let span = Span::new(left.expr.span.start, self.span().end);
-        self.report(Slip::missing_operator(span, &left.expr.kind, self.peek()));
+        // Behind a slip, what is missing is most likely part of it.
+        if left.expr.kind != ExprKind::Hole {
+            self.report(Slip::missing_operator(span, &left.expr.kind, self.peek()));
+        }
         let right = self.power();
         self.join(BinaryOp::Mul, left, right)
     }
@@ -327,11 +321,7 @@ impl Parser {
     fn no_operand(&mut self, found: Option<&Token>, span: Span) -> Tree {
         let here = Span::new(self.previous_end().min(span.start), span.end);
         match found {
-            None => {
-                let at = Span::new(self.previous_end(), self.end);
-                let help = "something must follow the last operator";
-                self.slip(at, "the formula breaks off here", "a number, a name or \"(\"", help);
-            }
+            None => self.say(Words::BreaksOff, Span::new(self.previous_end(), self.end)),
             Some(&Token::Strange(c @ ('[' | '{'))) => {
                 self.report(Slip::strange(c, span));
                 self.at += 1;
@@ -343,13 +333,9 @@ impl Parser {
                 self.report(Slip::strange(c, span));
                 self.at += 1;
             }
-            Some(Token::Close | Token::Comma) => {
-                let help = "put a number, a name or a parenthesis there";
-                self.slip(span, "an operand is missing before this", "a number, a name or \"(\"", help);
-            }
+            Some(Token::Close | Token::Comma) => self.say(Words::OperandMissing, span),
             Some(_) => {
-                let help = "put a number, a name or a parenthesis between the two operators";
-                self.slip(span, "an operand is missing before this operator", "a number, a name or \"(\"", help);
+                self.say(Words::OperandMissingBetween, span);
                 self.at += 1;
                 return self.deeper(span, Self::signed).unwrap_or_else(|| hole(here));
             }
@@ -358,9 +344,7 @@ impl Parser {
     }
 
     fn foreign_operator(&mut self, found: char, ours: &str, op: BinaryOp) -> BinaryOp {
-        let span = self.span();
-        let message = format!("\"{found}\" is not an operator here");
-        self.slip(span, &message, ours, &format!("write \"{ours}\""));
+        self.report(Words::ForeignOperator.at(self.span(), &[&found, &ours]));
         op
     }
 
@@ -368,8 +352,7 @@ impl Parser {
         let span = left.expr.span.to(right.expr.span);
         let height = left.height.max(right.height) + 1;
         if height > HIGHEST_TREE {
-            let message = format!("the formula has more than {HIGHEST_TREE} operators in a row");
-            return self.refuse(span, &message, "split it through shorthand");
+            return self.refuse(Words::TooLong, span, HIGHEST_TREE);
         }
         let kind = ExprKind::Binary(op, Box::new(left.expr), Box::new(right.expr));
         Tree { expr: Expr { kind, span }, height }
@@ -378,8 +361,7 @@ impl Parser {
     /// Runs a rule one level deeper, unless that is too deep.
     fn deeper<T>(&mut self, at: Span, rule: impl FnOnce(&mut Self) -> T) -> Option<T> {
         if self.depth >= DEEPEST_NESTING {
-            let message = format!("the formula is nested more than {DEEPEST_NESTING} deep");
-            let _ = self.refuse(at, &message, "split it through shorthand");
+            let _ = self.refuse(Words::TooDeep, at, DEEPEST_NESTING);
             return None;
         }
         self.depth += 1;

@@ -3,39 +3,19 @@
 //! A row has what is wrong, what was expected and what to do, with `{0}`, `{1}` … for the values at hand.
 //! [`Message::at`] makes the diagnostic. To say something new, add a row here and a file of its name to
 //! `tests/files/errors`; the tests fail on a row that no file provokes. Slips inside formulas have their own words in
-//! `expr::parse`.
+//! `expr::slip`, units in `units::message`.
 
 use std::fmt::Display;
 
-use crate::diag::cleanse::clip;
+use crate::diag::wording::{fill, wording};
 use crate::diag::{Diagnostic, Location};
-
-/// Characters of a value from the file that a message repeats.
-const VALUE_LIMIT: usize = 200;
 
 /// Digits of a number that are written without an exponent.
 const DIGITS: usize = 20;
 
-macro_rules! messages {
-    ($($name:ident: $what:literal, $expected:literal, $help:literal;)*) => {
-        /// One thing that can be wrong.
-        #[derive(Clone, Copy, Debug, PartialEq, Eq)]
-        pub(super) enum Message { $(#[doc = $what] $name),* }
-
-        impl Message {
-            /// Every row of the table.
-            #[cfg(test)]
-            pub(super) const ALL: &'static [Self] = &[$(Self::$name),*];
-
-            /// What is wrong, what was expected, what to do.
-            pub(super) const fn row(self) -> [&'static str; 3] {
-                match self { $(Self::$name => [$what, $expected, $help]),* }
-            }
-        }
-    };
-}
-
-messages! {
+wording! {
+/// One thing that can be wrong.
+pub(super) enum Message {
     // The file as a whole.
     FileTooLarge: "the file is {0} bytes long; at most {1} are read", "", "move large tables into CSV files and name them in the model";
     NotUtf8: "the text is not valid UTF-8 from here on", "", "save the file with the encoding UTF-8";
@@ -55,11 +35,16 @@ messages! {
     SplitFormula: "the comma splits the formula \"{0}\" in two", "", "inside braces quote a formula that has a comma: \"{0}\"";
     SplitNumber: "the comma splits the number \"{0}\" in two", "", "write the decimal point: {1}";
     KeyAlone: "\"{0}\" stands without a value", "\"{0}: …\"", "give it a value; if the comma before it belongs to a text, quote that text";
+    ColonSpace: "no space follows the colon in \"{0}\"", "\"{1}: …\"", "write {1}: {2}";
     // The grammar of YAML.
     YamlSplitFormula: "this cannot be read as YAML: the comma splits a formula inside braces", "", "inside braces quote a formula that has a comma: \"{0}\"";
     YamlColon: "this cannot be read as YAML: a second colon on the line", "", "quote the text if the colon belongs to it: \"{0}\"";
+    YamlBraces: "this cannot be read as YAML: a second colon on the line", "", "a map inside a line stands in braces: {{0}}; if the colon belongs to a text, quote it";
+    YamlDeeper: "this cannot be read as YAML: the line is indented deeper than the one before it", "a key in line with those beside it", "align the keys of one map in one column";
+    YamlDash: "this cannot be read as YAML: an entry of a list stands among keys", "a key", "delete the \"- \" before it";
     YamlTab: "this cannot be read as YAML: a tab stands where only spaces may indent", "spaces", "replace the tab by spaces";
     YamlMapOpen: "this cannot be read as YAML: the braces that open here are not closed properly", "", "close with \"}\", and put a comma between entries";
+    YamlComma: "this cannot be read as YAML: a comma is missing before this entry", "a comma, then the entry", "put commas between the entries inside braces";
     YamlListOpen: "this cannot be read as YAML: the bracket that opens here is not closed properly", "", "close with \"]\", and put a comma between entries";
     YamlQuoteOpen: "this cannot be read as YAML: the quotation mark that opens here is never closed", "", "close the quotation; inside single quotes write a single quote twice";
     YamlEscape: "this cannot be read as YAML: the backslash begins no known escape", "", "write two backslashes, or use single quotes";
@@ -173,6 +158,7 @@ messages! {
     DrawOutside: "the value {0} of \"{1}\" lies outside the limits of the model: {2}", "", "delete the row, or change \"min\" or \"max\" in the model";
     MoreErrors: "there are {0} more errors", "", "mend the first ones and check again";
 }
+}
 
 impl Message {
     /// The diagnostic at a place, with the values in order; long values are clipped.
@@ -186,22 +172,4 @@ impl Message {
 pub(super) fn digits(value: f64) -> String {
     let plain = value.to_string();
     if plain.len() <= DIGITS { plain } else { format!("{value:e}") }
-}
-
-fn fill(template: &str, values: &[&dyn Display]) -> String {
-    let mut text = String::with_capacity(template.len());
-    let mut rest = template;
-    while let Some(open) = rest.find('{') {
-        let index = rest[open + 1..].chars().next().and_then(|c| c.to_digit(10));
-        let value = index.filter(|_| rest[open + 2..].starts_with('}')).and_then(|index| values.get(index as usize));
-        text.push_str(&rest[..open]);
-        if let Some(value) = value {
-            text.push_str(&clip(&value.to_string(), VALUE_LIMIT));
-            rest = &rest[open + 3..];
-        } else {
-            text.push('{');
-            rest = &rest[open + 1..];
-        }
-    }
-    text + rest
 }

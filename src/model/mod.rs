@@ -274,8 +274,8 @@ pub struct Harvest {
 pub enum Entry {
     /// A plain number.
     Number(f64),
-    /// A formula of parameters.
-    Formula(Formula),
+    /// A formula of parameters; boxed, because a table of a thousand species has a million entries, nearly all numbers.
+    Formula(Box<Formula>),
 }
 
 /// A Lotka–Volterra block: adds `x_i (growth_i + Σ_j matrix_ij x_j)` to row i.

@@ -8,6 +8,7 @@ use super::events::{Fault, Style};
 use super::messages::Message;
 use super::tree::{Entry, Kind, Node};
 use crate::diag::{Diagnostic, Location, SourceId, Span};
+use crate::expr::lex::is_identifier;
 
 /// Which of the fault's two places a message points to.
 enum Point {
@@ -48,24 +49,46 @@ pub(super) fn explain(text: &str, source: SourceId, fault: &Fault) -> Diagnostic
         let span = Span::new(line.start + formula.start, line.start + formula.end);
         return Message::YamlSplitFormula.at(Location { source, span }, &[&&text[span.start..span.end]]);
     }
-    match row {
+    let related = |message: Message, what: &str| message.at(here, &[]).related(place(fault.began), what);
+    match row.map(|(_, message, _)| *message) {
         None => Message::YamlOther.at(here, &[&fault.problem]),
         // A tab that indents is met as a character that begins nothing.
-        Some((_, Message::YamlStart, _)) if word == "\t" => Message::YamlTab.at(here, &[]),
-        Some((_, Message::YamlColon, _)) if !text[line.start..fault.at.clamp(line.start, line.end)].contains(": ") => {
-            let before = line_at(text, text[..line.start].trim_end().len().saturating_sub(1));
-            let start = before.end - text[before.start..before.end].trim_start().len();
-            Message::YamlKeyColon.at(Location { source, span: Span::new(start, before.end) }, &[])
+        Some(Message::YamlStart) if word == "\t" => Message::YamlTab.at(here, &[]),
+        Some(Message::YamlColon) => second_colon(text, source, fault),
+        Some(Message::YamlKeyColon) => {
+            let span = Span::new(here.span.start, line_at(text, here.span.start).end);
+            Message::YamlKeyColon.at(Location { source, span }, &[])
         }
-        Some((_, Message::YamlColon, _)) => Message::YamlColon.at(here, &[&value_of(&text[line.start..line.end])]),
-        Some((_, message @ Message::YamlIndent, _)) => {
-            message.at(here, &[]).related(place(fault.began), "the map begins here")
+        Some(Message::YamlMapOpen) if text.get(fault.at..).is_some_and(|rest| rest.starts_with(':')) => {
+            let key = text[line.start..fault.at].rfind([' ', ',', '{']).map_or(line.start, |at| line.start + at + 1);
+            Message::YamlComma.at(Location { source, span: Span::new(key, fault.at) }, &[])
         }
-        Some((_, message @ Message::YamlItem, _)) => {
-            message.at(here, &[]).related(place(fault.began), "the list begins here")
-        }
-        Some((_, message, _)) => message.at(here, &[&word]),
+        Some(Message::YamlIndent) if word == "-" => related(Message::YamlDash, "the map begins here"),
+        Some(Message::YamlIndent) => related(Message::YamlIndent, "the map begins here"),
+        Some(Message::YamlItem) => related(Message::YamlItem, "the list begins here"),
+        Some(message) => message.at(here, &[&word]),
     }
+}
+
+/// A colon where a value goes on: of a text that has one, of a map without braces, or of a line whose key was not seen
+/// as one, because the line before it is not ended or not as far to the right.
+fn second_colon(text: &str, source: SourceId, fault: &Fault) -> Diagnostic {
+    let line = line_at(text, fault.at);
+    let before_colon = &text[line.start..fault.at.clamp(line.start, line.end)];
+    if before_colon.contains(": ") {
+        let here = Location { source, span: character(text, fault.at) };
+        let value = value_of(&text[line.start..line.end]);
+        let is_map = value.split_once(": ").is_some_and(|(key, rest)| is_identifier(key) && rest.contains(": "));
+        let message = if is_map { Message::YamlBraces } else { Message::YamlColon };
+        return message.at(here, &[&value]);
+    }
+    let before = line_at(text, text[..line.start].trim_end().len().saturating_sub(1));
+    let begin = |line: Span| line.end - text[line.start..line.end].trim_start().len();
+    if text[before.start..before.end].contains(": ") {
+        let span = Span::new(begin(line), fault.at.max(begin(line)));
+        return Message::YamlDeeper.at(Location { source, span }, &[]);
+    }
+    Message::YamlKeyColon.at(Location { source, span: Span::new(begin(before), before.end) }, &[])
 }
 
 /// Whether a map's entry is a key to which no colon was written.
@@ -97,6 +120,14 @@ pub(super) fn split(text: &str, previous: Option<&Entry>, key: &Node, word: &str
     let formula = balanced(text.get(span.start..).unwrap_or_default());
     let whole = Span::new(span.start, span.start + formula.len());
     Some(Message::SplitFormula.at(place(whole), &[&formula]))
+}
+
+/// A key, its colon and its value that were taken for one key, because no space follows the colon.
+pub(super) fn joined(key: &Node) -> Option<(&str, &str)> {
+    let Kind::Scalar(scalar) = &key.kind else { return None };
+    let (name, value) = scalar.value.split_once(':').filter(|_| scalar.style == Style::Plain)?;
+    let is_value = !value.is_empty() && !value.contains(|c: char| c == ':' || c.is_whitespace());
+    (is_identifier(name) && is_value).then_some((name, value))
 }
 
 fn is_digits(text: &str) -> bool {

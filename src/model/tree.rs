@@ -267,6 +267,17 @@ impl Builder<'_> {
             previous.value = broken(previous.value.at);
             return true;
         }
+        if let Some((name, value)) = slips::joined(key) {
+            self.found.say(Message::ColonSpace, key.at, &[&text, &name, &value]);
+            let at = Location { span: Span::new(key.at.span.end - value.len(), key.at.span.end), ..key.at };
+            let kind = Kind::Scalar(Scalar { value: value.to_owned(), style: Style::Plain });
+            entries.push(Entry {
+                key: normal(name),
+                key_at: key.at,
+                value: Rc::new(Node { kind, at, size: key.size }),
+            });
+            return false;
+        }
         self.found.say(Message::KeyAlone, key.at, &[&text]);
         entries.push(Entry { key: text, key_at: key.at, value: broken(key.at) });
         false

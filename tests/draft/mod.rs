@@ -127,8 +127,8 @@ impl Draft {
 
     /// Adds a Lotka-Volterra block.
     pub(crate) fn block(mut self, growth: &[&str], matrix: &[&str]) -> Self {
-        let growth = growth.iter().map(|text| Entry::Formula(self.formula(text))).collect();
-        let matrix = matrix.iter().map(|text| Entry::Formula(self.formula(text))).collect();
+        let growth = growth.iter().map(|text| Entry::Formula(Box::new(self.formula(text)))).collect();
+        let matrix = matrix.iter().map(|text| Entry::Formula(Box::new(self.formula(text)))).collect();
         self.model.block = Some(Block { at: Location::default(), growth, matrix });
         self
     }

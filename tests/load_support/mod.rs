@@ -1,4 +1,5 @@
-//! Files that mean harm, for the tests of time and of memory.
+//! Files that mean harm, for the tests of limits and of memory and for the benchmark of loading.
+#![allow(dead_code, reason = "each file uses its own part")]
 
 use std::fmt::Write as _;
 
@@ -77,6 +78,12 @@ pub(crate) fn faulty_files() -> Vec<Hostile> {
             (7, 13),
         ),
     ]
+}
+
+/// A file far beyond the limit, which takes memory of its own before it is read.
+pub(crate) fn huge_file() -> Hostile {
+    let text = format!("{BASE}note: {}", "x".repeat(64 << 20));
+    hostile("64 MiB of a note", text, "the file is 67108928 bytes long; at most 1048576 are read", (1, 1))
 }
 
 fn laughs() -> String {

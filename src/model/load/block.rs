@@ -181,9 +181,9 @@ fn entry_of(formula: crate::model::Formula) -> Entry {
         ExprKind::Number(value) => Entry::Number(*value),
         ExprKind::Neg(inner) => match inner.kind {
             ExprKind::Number(value) => Entry::Number(-value),
-            _ => Entry::Formula(formula),
+            _ => Entry::Formula(Box::new(formula)),
         },
-        _ => Entry::Formula(formula),
+        _ => Entry::Formula(Box::new(formula)),
     }
 }
 

@@ -118,7 +118,9 @@ impl<'f> Desk<'f> {
     }
 
     fn mapping<'n>(&mut self, node: &'n Node, name: &str, table: &Table) -> Option<&'n [Entry]> {
-        let example = table.keys.iter().find(|key| key.required).or(table.keys.first()).map_or("{}", |key| key.example);
+        let needed: Vec<&str> = table.keys.iter().filter(|key| key.required).map(|key| key.example).collect();
+        let first = || table.keys.first().map_or("", |key| key.example).to_owned();
+        let example = if needed.is_empty() { first() } else { needed.join(", ") };
         self.map(node, name, table.form, &format!("write for example {{{example}}}"))
     }
 

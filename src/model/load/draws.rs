@@ -10,9 +10,6 @@ use crate::diag::Location;
 use crate::model::messages::{Message, digits};
 use crate::model::{Draw, DrawTable, Parameter, ParameterId};
 
-/// Bytes of a file of draws.
-const DRAWS_LIMIT: usize = 64 << 20;
-
 /// The table of draws. A parameter that is a column is no longer drawn by its range alone.
 pub(super) fn read(
     desk: &mut Desk<'_>,
@@ -23,7 +20,7 @@ pub(super) fn read(
     let node = fields.get("draws").filter(|node| !is_null(node))?;
     let path = desk.line(node, "\"draws\"", "the name of a CSV file")?;
     let advice = "give each draw a value for every column";
-    let table = open(desk, &path.value, path.at, &Form { limit: DRAWS_LIMIT, row: "draw", advice })?;
+    let table = open(desk, &path.value, path.at, &Form { row: "draw", advice })?;
     let columns = columns(desk, names, &table);
     for &id in columns.iter().flatten() {
         drawn_once(desk, &mut parameters[id.0], &path.value);

@@ -13,9 +13,6 @@ use crate::model::Placed;
 use crate::model::messages::Message;
 use crate::model::tree::normal;
 
-/// Bytes of a matrix file.
-const MATRIX_LIMIT: usize = 16 << 20;
-
 /// A table whose rows are species, with columns in the order of the rows.
 pub(super) struct SymbolTable {
     pub(super) table: Table,
@@ -30,7 +27,7 @@ pub(super) struct SymbolTable {
 /// A table of two columns: symbol and growth.
 pub(super) fn growth(desk: &mut Desk<'_>, path: &str, at: Location) -> Option<SymbolTable> {
     let advice = "write a symbol and its growth in each row";
-    let table = open(desk, path, at, &Form { limit: MATRIX_LIMIT, row: "species", advice })?;
+    let table = open(desk, path, at, &Form { row: "species", advice })?;
     let [_, heading] = table.heading.as_slice() else {
         let first = Location {
             source: table.source,
@@ -55,7 +52,7 @@ pub(super) fn growth(desk: &mut Desk<'_>, path: &str, at: Location) -> Option<Sy
 /// A square table: symbols in the first row and the first column, in any order.
 pub(super) fn matrix(desk: &mut Desk<'_>, path: &str, at: Location) -> Option<SymbolTable> {
     let advice = "give each row as many cells as there are columns";
-    let table = open(desk, path, at, &Form { limit: MATRIX_LIMIT, row: "species", advice })?;
+    let table = open(desk, path, at, &Form { row: "species", advice })?;
     if table.heading.len() > SPECIES_LIMIT + 1 {
         let start = table.at(table.heading[0]);
         desk.say(Message::TooManySpecies, start, &[&(table.heading.len() - 1), &SPECIES_LIMIT]);

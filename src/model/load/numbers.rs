@@ -36,8 +36,12 @@ pub(super) fn why_not_a_number(text: &str, plain: bool) -> (Message, String) {
     if trimmed.parse::<f64>().is_ok() || trimmed.ends_with('∞') {
         return (Message::NotFinite, String::new());
     }
-    if let Some(advice) = with_unit(trimmed) {
-        return (Message::NumberWithUnit, advice);
+    match behind_number(trimmed) {
+        Some((_, exponent)) if is_exponent(exponent) => return (Message::NotANumber, String::new()),
+        Some((number, unit)) => {
+            return (Message::NumberWithUnit, format!("{{value: {number}, unit: {unit}}}"));
+        }
+        None => {}
     }
     let operators = ['+', '-', '*', '/', '^', '('];
     if trimmed.contains(operators) && trimmed.contains(|c: char| c.is_alphanumeric()) && !is_identifier(trimmed) {
@@ -46,12 +50,17 @@ pub(super) fn why_not_a_number(text: &str, plain: bool) -> (Message, String) {
     (Message::NotANumber, String::new())
 }
 
-/// A number with a unit behind it, as it should be written.
-fn with_unit(text: &str) -> Option<String> {
+/// A number, and the letters behind it with all that follows them.
+fn behind_number(text: &str) -> Option<(&str, &str)> {
     let end = text.find(|c: char| c.is_whitespace() || c.is_alphabetic())?;
-    let (number, unit) = (&text[..end], text[end..].trim_start());
-    let starts_unit = unit.starts_with(char::is_alphabetic);
-    (starts_unit && number.parse::<f64>().is_ok()).then(|| format!("{{value: {number}, unit: {unit}}}"))
+    let (number, rest) = (&text[..end], text[end..].trim_start());
+    (rest.starts_with(char::is_alphabetic) && number.parse::<f64>().is_ok()).then_some((number, rest))
+}
+
+/// Whether letters behind a number are the power of ten of a number that was badly written.
+fn is_exponent(text: &str) -> bool {
+    text.strip_prefix(['e', 'E'])
+        .is_some_and(|power| power.starts_with(|c: char| c.is_ascii_digit() || "+-".contains(c)))
 }
 
 fn without_leading_zeros(digits: &str) -> String {
@@ -92,6 +101,7 @@ mod tests {
             ("100 kt", true, Message::NumberWithUnit, "{value: 100, unit: kt}"),
             ("0.3/yr", true, Message::FormulaForNumber, ""),
             ("1.5kt/yr", true, Message::NumberWithUnit, "{value: 1.5, unit: kt/yr}"),
+            ("4e-3.0", true, Message::NotANumber, ""),
             ("-", true, Message::NotANumber, ""),
         ] {
             assert_eq!(why_not_a_number(text, plain), (message, advice.to_owned()), "{text}");

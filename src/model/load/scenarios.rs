@@ -13,6 +13,8 @@ use crate::model::{Formula, Harvest, ParameterId, Placed, Process, Scenario, Spe
 pub(super) struct Base<'m> {
     pub(super) processes: &'m [Process],
     pub(super) harvest: &'m [Harvest],
+    /// Names of all processes and harvests, also of those that could not be read.
+    pub(super) parts: Vec<&'m str>,
     pub(super) time: &'m TimeKind,
     /// Where the title stands, for the scenario that is there when the file has none.
     pub(super) title_at: Location,
@@ -77,7 +79,7 @@ fn values(desk: &mut Desk<'_>, fields: &Fields<'_>, names: &Names) -> Vec<(Param
 fn without(desk: &mut Desk<'_>, fields: &Fields<'_>, base: &Base<'_>) -> Vec<Placed<String>> {
     let what = "a list of processes and harvests, such as [trawl]";
     let Some(node) = fields.get("without").filter(|node| !is_null(node)) else { return Vec::new() };
-    let known: Vec<&str> = parts(base).map(|(name, _)| name).collect();
+    let known = &base.parts;
     let mut found: Vec<Placed<String>> = Vec::new();
     for node in desk.list(node, "\"without\"", what).unwrap_or_default() {
         let Some(name) = desk.text(node, "\"without\"", "the name of a process or harvest") else { continue };
@@ -92,12 +94,6 @@ fn without(desk: &mut Desk<'_>, fields: &Fields<'_>, base: &Base<'_>) -> Vec<Pla
         found.push(name);
     }
     found
-}
-
-/// Names of processes and harvests with their places.
-fn parts<'m>(base: &'m Base<'_>) -> impl Iterator<Item = (&'m str, Location)> {
-    let processes = base.processes.iter().map(|process| (process.name.as_str(), process.at));
-    processes.chain(base.harvest.iter().map(|harvest| (harvest.name.as_str(), harvest.at)))
 }
 
 fn contradictions(desk: &mut Desk<'_>, scenario: &Scenario) {

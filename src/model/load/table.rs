@@ -10,6 +10,9 @@ use super::desk::Desk;
 use crate::diag::{Location, SourceId, Span};
 use crate::model::messages::Message;
 
+/// Bytes of a table: a thousand species, or a hundred thousand draws of a dozen parameters.
+const TABLE_LIMIT: usize = 16 << 20;
+
 /// A cell without the blanks around it; quotation marks belong to its span.
 #[derive(Clone, Copy, Debug)]
 pub(super) struct Cell {
@@ -30,8 +33,6 @@ pub(super) struct Table {
 
 /// How a table is read.
 pub(super) struct Form {
-    /// Bytes of the file.
-    pub(super) limit: usize,
     /// What one row is, for messages.
     pub(super) row: &'static str,
     /// What to do about a row of another length.
@@ -61,10 +62,10 @@ impl Table {
 /// Reads the file that a value of the model names. `None` after saying why it cannot be used; rows of another length
 /// than the heading are reported and left out.
 pub(super) fn open(desk: &mut Desk<'_>, path: &str, at: Location, form: &Form) -> Option<Table> {
-    let bytes = match desk.files.read(path, form.limit) {
-        Ok(bytes) if bytes.len() <= form.limit => bytes,
+    let bytes = match desk.files.read(path, TABLE_LIMIT) {
+        Ok(bytes) if bytes.len() <= TABLE_LIMIT => bytes,
         Ok(bytes) => {
-            desk.say(Message::FileTooLarge, at, &[&bytes.len(), &form.limit]);
+            desk.say(Message::FileTooLarge, at, &[&bytes.len(), &TABLE_LIMIT]);
             return None;
         }
         Err(reason) => {

@@ -39,7 +39,8 @@ pub(super) fn model(desk: &mut Desk<'_>, root: &Node) -> Option<Model> {
     let draws = draws::read(desk, &fields, &names, &mut parameters);
     let correlations = parameters::correlations(desk, &fields, &names, &parameters, draws.as_ref());
     let title_at = title.as_ref().map_or(root.at, |title| title.at);
-    let base = scenarios::Base { processes: &processes, harvest: &harvest, time: &time, title_at };
+    let parts = ["processes", "harvest"].into_iter().flat_map(|key| keys_of(&fields, key)).collect();
+    let base = scenarios::Base { processes: &processes, harvest: &harvest, parts, time: &time, title_at };
     let scenarios = scenarios::read(desk, &fields, &names, &base);
     let sketch = scenarios::sketch(desk, &fields, &names);
     let model = Model {
@@ -65,6 +66,15 @@ pub(super) fn model(desk: &mut Desk<'_>, root: &Node) -> Option<Model> {
     };
     finite_values(desk, &model);
     Some(model)
+}
+
+/// The names in a section, also of what could not be read.
+fn keys_of<'n>(fields: &Fields<'n>, section: &str) -> impl Iterator<Item = &'n str> {
+    let entries = match fields.get(section).map(|node| &node.kind) {
+        Some(Kind::Mapping(entries)) => entries.as_slice(),
+        _ => &[],
+    };
+    entries.iter().map(|entry| entry.key.as_str())
 }
 
 /// Whether an unknown key was meant for a section that declares names; their uses must not be reported as well.
@@ -111,11 +121,8 @@ fn next_for_all(desk: &mut Desk<'_>, fields: &Fields<'_>, time: &TimeKind, next:
     }
     let Some(entry) = fields.entry("next") else {
         let what = "the next state of every species";
-        desk.say(
-            Message::MissingKey,
-            fields.at,
-            &[&"a discrete model", &"next", &what, &"next: {N: N*exp(r*(1 - N/K))}"],
-        );
+        let at = fields.entry("time").map_or(fields.at, |entry| entry.key_at);
+        desk.say(Message::MissingKey, at, &[&"a discrete model", &"next", &what, &"next: {N: N*exp(r*(1 - N/K))}"]);
         return;
     };
     let Kind::Mapping(entries) = &entry.value.kind else { return };

@@ -5,11 +5,13 @@
 //! `max`, `clamp` and `ramp`. An exponent that is a constant expression of parameters counts with its base value, so that
 //! `S^n/(H^n + S^n)` is checked at the model's own n. What each formula of a model must be in is [`places`](super::places).
 
-use super::message::{Piece, Reason};
+use super::message::{Piece, Reason, Words};
 use super::report::{Report, names_in};
 use super::solve::{Solver, Term};
+use super::unit::LARGEST_POWER;
 use crate::diag::Location;
 use crate::expr::ast::{BinaryOp, Builtin, Expr, ExprKind};
+use crate::expr::constant::evaluate;
 use crate::model::{Formula, Model, Name};
 
 /// What is known of an expression's unit.
@@ -31,9 +33,6 @@ enum Bare {
     /// It is in the unit of its neighbour.
     Threshold,
 }
-
-/// Powers beyond this are slips; nothing is concluded from them.
-const LARGEST_POWER: f64 = 100.0;
 
 /// Walks formulas, collecting equations and warnings.
 pub(super) struct Walker<'m> {
@@ -85,26 +84,11 @@ impl<'m> Walker<'m> {
 
     /// The value of an expression of numbers and parameters, at the base values.
     pub(super) fn constant(&self, expr: &Expr) -> Option<f64> {
-        match &expr.kind {
-            ExprKind::Number(x) => Some(*x),
-            ExprKind::Name(name) => match self.model.names.get(name)? {
-                Name::Parameter(id) => self.model.parameters.get(id.0).map(|parameter| parameter.value),
-                Name::Shorthand(id) => self.constants.get(id.0).copied().flatten(),
-                Name::Species(_) => None,
-            },
-            ExprKind::Neg(a) => self.constant(a).map(|x| -x),
-            ExprKind::Binary(operator, a, b) => {
-                let (a, b) = (self.constant(a)?, self.constant(b)?);
-                Some(match operator {
-                    BinaryOp::Add => a + b,
-                    BinaryOp::Sub => a - b,
-                    BinaryOp::Mul => a * b,
-                    BinaryOp::Div => a / b,
-                    BinaryOp::Pow => a.powf(b),
-                })
-            }
-            ExprKind::Call(..) | ExprKind::Hole => None,
-        }
+        evaluate(expr, &|name| match self.model.names.get(name)? {
+            Name::Parameter(id) => self.model.parameters.get(id.0).map(|parameter| parameter.value),
+            Name::Shorthand(id) => self.constants.get(id.0).copied().flatten(),
+            Name::Species(_) => None,
+        })
     }
 
     fn named(&self, name: &str) -> Quantity {
@@ -261,7 +245,7 @@ impl<'m> Walker<'m> {
             Name::Shorthand(_) => return None,
         };
         let Quantity::Of(term) = quantity else { return None };
-        Some((self.solver.told_at(term)?, format!("the unit of \"{text}\" follows from here")))
+        Some((self.solver.told_at(term)?, Words::FollowsFromHere.remark(&[text])))
     }
 
     /// Forgets what was concluded about a name that a warning is about, so that one slip is told once.

@@ -1,15 +1,63 @@
-//! The words for a mismatch of units.
+//! The words about units: what cannot be read as one, and where two differ.
 //!
-//! One [`Reason`] for each rule that can be broken; a new rule needs its words here.
+//! [`Words`] is the table; to say something new, add a row and a file of its name to `tests/files/units`. A warning is
+//! put together of a row for the rule that is broken (one [`Reason`] each) and, where it helps, of a remark.
+
+use std::fmt::Display;
 
 use super::solve::Mismatch;
 use super::unit::{Agreement, Unit, plain};
 use crate::diag::Diagnostic;
+use crate::diag::wording::{fill, wording};
 use crate::expr::ast::Expr;
 use crate::model::Formula;
 
 /// Longest piece of a formula that is quoted, in characters: longer ones would push the units out of sight.
 const LONGEST_QUOTE: usize = 40;
+
+wording! {
+/// One thing to say about units.
+pub(super) enum Words {
+    // What cannot be read as a unit.
+    Empty: "the unit is empty", "a unit such as kt/yr", "write 1 for a plain number";
+    TooLong: "the unit is too long to be one", "a unit such as kt/yr", "write the unit alone; a remark belongs into \"note\"";
+    BreaksOff: "nothing follows here in the unit", "a unit such as kt/yr", "write the unit that is meant";
+    TooDeep: "brackets are nested too deeply in the unit", "a unit such as kt/yr", "write powers in place of brackets, such as kg*m^-2";
+    NeverClosed: "this bracket is never closed", "a unit such as kt/yr", "add a \")\"";
+    NotAFactor: "\"{0}\" cannot be a factor of a unit", "a unit such as kt/yr", "write a number above 0";
+    LargePower: "the power is too large for a unit", "a unit such as kt/yr", "write a power of at most {0}";
+    PowerMissing: "\"{0}\" wants a number after it", "a unit such as kt/yr", "write a power such as ^2 or ^-1";
+    Stray: "\"{0}\" cannot stand here in a unit", "a unit such as kt/yr", "join units by * or /, as in kg/(m2*d)";
+    // Where two units should have agreed. Last comes the remark, where there is one.
+    Beside: "{0} {1}, but {2} beside it {3}{4}", "{5}", "{6}";
+    Plain: "{0} {1}, but {2} takes plain numbers{3}", "{4}", "{5}";
+    Exponent: "{0} {1}, but an exponent is a plain number{2}", "{3}", "{4}";
+    VaryingPower: "{0} {1}, but a power that varies needs a plain number as its base{2}", "{3}", "{4}";
+    Argument: "{0} {1}, but {2} needs {3} here{4}", "{3}", "{5}";
+    Place: "{0} {1}, but {2} {3}{4}", "{5}", "{6}";
+    // Remarks on it: the end of the message, and what to do.
+    OneUnit: "; the two differ by a factor {0}", "", "use one unit, or multiply by a parameter in {1}";
+    ReferenceLevel: "", "", "divide it by a reference level in {0}";
+    NameTheNumber: "", "", "give the number a name and a unit in \"parameters\"";
+    // Further places.
+    ThisIs: "this {0}", "", "";
+    SameDifference: "the same difference here", "", "";
+    FollowsFromHere: "the unit of \"{0}\" follows from here", "", "";
+}
+}
+
+impl Words {
+    /// The row with the values in order; long values are clipped.
+    pub(super) fn with(self, values: &[&dyn Display]) -> [String; 3] {
+        self.row().map(|template| fill(template, values))
+    }
+
+    /// What is said of a further place.
+    pub(super) fn remark(self, values: &[&dyn Display]) -> String {
+        let [remark, ..] = self.with(values);
+        remark
+    }
+}
 
 /// A piece of a formula.
 #[derive(Clone, Copy)]
@@ -50,46 +98,39 @@ pub(super) enum Reason<'m> {
 
 /// The warning for a piece that is in one unit where another is due.
 pub(super) fn warning(piece: Piece<'_>, reason: &Reason<'_>, mismatch: &Mismatch) -> Diagnostic {
-    let want = &mismatch.want;
-    let due = match reason {
-        Reason::Beside(other) => format!("{} beside it {}", quote(*other), is_in(want)),
-        Reason::Plain(function) => format!("{function} takes plain numbers"),
-        Reason::Exponent => "an exponent is a plain number".to_owned(),
-        Reason::VaryingPower => "a power that varies needs a plain number as its base".to_owned(),
-        Reason::Argument(function) => format!("{function} needs {} here", noun(want)),
-        Reason::Place(what) => format!("{what} {}", is_in(want)),
+    let (got, want) = (is_in(&mismatch.got), &mismatch.want);
+    let (due, noun) = (is_in(want), noun(want));
+    let [end, _, help] = remark(reason, mismatch);
+    let what = quote(piece);
+    let [message, expected, help] = match reason {
+        Reason::Beside(other) => Words::Beside.with(&[&what, &got, &quote(*other), &due, &end, &noun, &help]),
+        Reason::Plain(function) => Words::Plain.with(&[&what, &got, function, &end, &noun, &help]),
+        Reason::Exponent => Words::Exponent.with(&[&what, &got, &end, &noun, &help]),
+        Reason::VaryingPower => Words::VaryingPower.with(&[&what, &got, &end, &noun, &help]),
+        Reason::Argument(function) => Words::Argument.with(&[&what, &got, function, &noun, &end, &help]),
+        Reason::Place(place) => Words::Place.with(&[&what, &got, place, &due, &end, &noun, &help]),
     };
-    let factor = match mismatch.agreement {
-        Agreement::Factor(factor) => format!("; the two differ by a factor {}", plain(factor)),
-        Agreement::Same | Agreement::Different => String::new(),
-    };
-    let message = format!("{} {}, but {due}{factor}", quote(piece), is_in(&mismatch.got));
-    let warning = Diagnostic::warning(piece.formula.locate(piece.expr.span), message)
-        .expected(noun(want))
-        .help(help(reason, mismatch));
+    let warning = Diagnostic::warning(piece.formula.locate(piece.expr.span), message).expected(expected).help(help);
     match reason {
         Reason::Beside(other) => {
-            warning.related(other.formula.locate(other.expr.span), format!("this {}", is_in(want)))
+            warning.related(other.formula.locate(other.expr.span), Words::ThisIs.remark(&[&is_in(want)]))
         }
         _ => warning,
     }
 }
 
-fn help(reason: &Reason<'_>, mismatch: &Mismatch) -> String {
+/// What to add to a warning, and what to do; empty where nothing is known to help.
+fn remark(reason: &Reason<'_>, mismatch: &Mismatch) -> [String; 3] {
+    let (got, want) = (&mismatch.got, &mismatch.want);
     match (reason, mismatch.agreement) {
-        (_, Agreement::Factor(_)) => {
-            let (got, want) = (&mismatch.got, &mismatch.want);
+        (_, Agreement::Factor(factor)) => {
             let mut ratio = want.clone();
             ratio.multiply(got, -1.0);
-            format!("use one unit, or multiply by a parameter in {ratio}")
+            Words::OneUnit.with(&[&plain(factor), &ratio])
         }
-        (Reason::Plain(_) | Reason::VaryingPower, _) => {
-            format!("divide it by a reference level in {}", mismatch.got)
-        }
-        (_, _) if is_plain(&mismatch.got) && !is_plain(&mismatch.want) => {
-            "give the number a name and a unit in \"parameters\"".to_owned()
-        }
-        _ => String::new(),
+        (Reason::Plain(_) | Reason::VaryingPower, _) => Words::ReferenceLevel.with(&[got]),
+        (_, _) if is_plain(got) && !is_plain(want) => Words::NameTheNumber.with(&[]),
+        _ => Default::default(),
     }
 }
 

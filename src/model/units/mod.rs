@@ -14,6 +14,9 @@ mod report;
 mod solve;
 mod unit;
 
+#[cfg(test)]
+mod tests;
+
 pub use read::{Malformed, read};
 pub use unit::{Agreement, Unit, compare};
 
@@ -67,7 +70,7 @@ pub fn malformed(model: &Model) -> Vec<Diagnostic> {
         .filter_map(|unit| {
             let slip = read(&unit.value).err()?;
             let at = place_in(&model.sources, unit, slip.span);
-            Some(Diagnostic::error(at, slip.message).expected("a unit such as kt/yr").help(slip.help))
+            Some(Diagnostic::error(at, slip.message).expected(slip.expected).help(slip.help))
         })
         .collect()
 }

@@ -4,16 +4,17 @@
 //! after a known unit, by a sign and digits, or by raised digits. A word that nobody knows is a unit of its own, and a
 //! hyphen between letters belongs to the word (`trap-night`). Start at [`read`].
 
+use std::fmt::Display;
+
 use super::known;
-use super::unit::Unit;
+use super::message::Words;
+use super::unit::{LARGEST_POWER, Unit};
 use crate::diag::Span;
 
 /// Longest unit that is read, in bytes; longer ones are some other text in the wrong place.
 const LONGEST: usize = 200;
 /// Most brackets inside one another.
 const DEEPEST: usize = 16;
-/// Largest power; what is larger is a slip, and would take sizes out of range.
-const LARGEST_POWER: f64 = 100.0;
 
 /// Why a text is not a unit.
 #[derive(Clone, Debug, PartialEq)]
@@ -22,8 +23,10 @@ pub struct Malformed {
     pub span: Span,
     /// What is wrong, as one plain sentence.
     pub message: String,
-    /// What to do about it; may be empty.
-    pub help: &'static str,
+    /// What was expected there.
+    pub expected: String,
+    /// What to do about it.
+    pub help: String,
 }
 
 /// The unit that `text` writes.
@@ -34,9 +37,9 @@ pub struct Malformed {
 pub fn read(text: &str) -> Result<Unit, Malformed> {
     let whole = Span::new(0, text.len());
     match text.trim() {
-        "" => return Err(malformed(whole, "the unit is empty", "write 1 for a plain number")),
+        "" => return Err(malformed(Words::Empty, whole, &[])),
         "-" | "–" | "—" => return Ok(Unit::one()),
-        _ if text.len() > LONGEST => return Err(malformed(whole, "the unit is too long to be one", "")),
+        _ if text.len() > LONGEST => return Err(malformed(Words::TooLong, whole, &[])),
         _ => {}
     }
     let mut reader = Reader { text, at: 0, depth: 0 };
@@ -47,8 +50,9 @@ pub fn read(text: &str) -> Result<Unit, Malformed> {
     }
 }
 
-fn malformed(span: Span, message: impl Into<String>, help: &'static str) -> Malformed {
-    Malformed { span, message: message.into(), help }
+fn malformed(words: Words, span: Span, values: &[&dyn Display]) -> Malformed {
+    let [message, expected, help] = words.with(values);
+    Malformed { span, message, expected, help }
 }
 
 /// What a power follows, which decides how it may be written.
@@ -88,7 +92,8 @@ impl<'t> Reader<'t> {
     fn operator(&mut self) -> Option<f64> {
         self.skip_spaces();
         let rest = self.rest();
-        let is_per = rest.strip_prefix("per").is_some_and(|after| after.starts_with(char::is_whitespace));
+        let is_per =
+            rest.strip_prefix("per").is_some_and(|after| after.is_empty() || after.starts_with(char::is_whitespace));
         let (length, power) = match self.peek()? {
             '/' => (1, -1.0),
             c @ ('*' | '·' | '⋅' | '×' | '.') => (c.len_utf8(), 1.0),
@@ -112,7 +117,7 @@ impl<'t> Reader<'t> {
                 let before = self.text[..start].trim_end();
                 let last = before.chars().next_back().map_or(0, char::len_utf8);
                 let span = Span::new(before.len() - last, before.len());
-                return Err(malformed(span, "nothing follows here in the unit", "write the unit that is meant"));
+                return Err(malformed(Words::BreaksOff, span, &[]));
             }
         };
         let power = self.power(before)?;
@@ -125,7 +130,7 @@ impl<'t> Reader<'t> {
         let open = Span::new(self.at, self.at + 1);
         self.depth += 1;
         if self.depth > DEEPEST {
-            return Err(malformed(open, "brackets are nested too deeply in the unit", ""));
+            return Err(malformed(Words::TooDeep, open, &[]));
         }
         self.at += 1;
         let inner = self.product()?;
@@ -133,7 +138,7 @@ impl<'t> Reader<'t> {
             return Err(self.stray());
         }
         if self.peek().is_none() {
-            return Err(malformed(open, "this bracket is never closed", "add a \")\""));
+            return Err(malformed(Words::NeverClosed, open, &[]));
         }
         self.at += 1;
         self.depth -= 1;
@@ -145,11 +150,7 @@ impl<'t> Reader<'t> {
         let (number, span) = self.decimal();
         match number {
             Some(x) if x.is_finite() && x > 0.0 => Ok(Unit { log10: x.log10(), parts: Vec::new() }),
-            _ => Err(malformed(
-                span,
-                format!("\"{}\" cannot be a factor of a unit", self.slice(span)),
-                "write a number above 0",
-            )),
+            _ => Err(malformed(Words::NotAFactor, span, &[&self.slice(span)])),
         }
     }
 
@@ -183,7 +184,7 @@ impl<'t> Reader<'t> {
             _ => return Ok(1.0),
         };
         if power.abs() > LARGEST_POWER {
-            return Err(malformed(Span::new(start, self.at), "the power is too large for a unit", ""));
+            return Err(malformed(Words::LargePower, Span::new(start, self.at), &[&LARGEST_POWER]));
         }
         Ok(power)
     }
@@ -191,8 +192,7 @@ impl<'t> Reader<'t> {
     /// The power after `sign`, in brackets or not; a quotient only in brackets.
     fn raised(&mut self, sign: &str) -> Result<f64, Malformed> {
         let span = Span::new(self.at, self.at + sign.len());
-        let missing =
-            || malformed(span, format!("\"{sign}\" wants a number after it"), "write a power such as ^2 or ^-1");
+        let missing = || malformed(Words::PowerMissing, span, &[&sign]);
         self.at += sign.len();
         self.skip_spaces();
         let open = self.at;
@@ -207,7 +207,7 @@ impl<'t> Reader<'t> {
         }
         self.skip_spaces();
         if self.peek() != Some(')') {
-            return Err(malformed(Span::new(open, open + 1), "this bracket is never closed", "add a \")\""));
+            return Err(malformed(Words::NeverClosed, Span::new(open, open + 1), &[]));
         }
         self.at += 1;
         Ok(power)
@@ -286,7 +286,7 @@ impl<'t> Reader<'t> {
     fn stray(&self) -> Malformed {
         let c = self.peek().unwrap_or(' ');
         let span = Span::new(self.at, (self.at + c.len_utf8()).min(self.text.len()));
-        malformed(span, format!("\"{}\" cannot stand here in a unit", c.escape_debug()), "")
+        malformed(Words::Stray, span, &[&c.escape_debug()])
     }
 
     fn skip_spaces(&mut self) {

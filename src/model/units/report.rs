@@ -3,7 +3,7 @@
 //! A parameter in the wrong unit makes the same difference wherever it is used: such repeats become further places of
 //! the first warning. Where the unit of a parameter was itself concluded, the place that told it is named too.
 
-use super::message::{Piece, Reason, warning};
+use super::message::{Piece, Reason, Words, warning};
 use super::solve::Mismatch;
 use super::unit::{Agreement, Unit, compare};
 use crate::diag::{Diagnostic, Location};
@@ -72,7 +72,7 @@ impl Finding {
     fn repeat(&mut self, at: Location) {
         let is_known = self.warning.at == at || self.warning.related.iter().any(|(other, _)| *other == at);
         if !is_known && self.repeats < MOST_REPEATS {
-            self.warning.related.push((at, "the same difference here".to_owned()));
+            self.warning.related.push((at, Words::SameDifference.remark(&[])));
             self.repeats += 1;
         }
     }

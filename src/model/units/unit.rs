@@ -11,6 +11,9 @@ use super::known::{self, Base};
 /// small fractions lose, far below any real difference.
 pub(super) const SAME: f64 = 1e-9;
 
+/// Largest power of a unit; what is larger is a slip, and would take sizes out of range.
+pub(super) const LARGEST_POWER: f64 = 100.0;
+
 /// A unit of measurement: a plain factor times powers of named units.
 #[derive(Clone, Debug, Default, PartialEq)]
 pub struct Unit {

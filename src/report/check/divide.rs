@@ -1,7 +1,9 @@
 //! A formula divided by a species' abundance, where it visibly is a multiple of it.
 //!
 //! Only for showing the per-capita form: `r*S*(1 - S/K)` becomes `r*(1 - S/K)`. Shorthands are written out where their
-//! body is what can be divided. What is not visibly a multiple is left alone; nothing is simplified further.
+//! body is what can be divided. What is not visibly a multiple is left alone; nothing is simplified further. The graph's
+//! own division finds more, but knows no shorthand and no order of terms, so that its quotients read like no line of the
+//! file.
 
 use super::formula::{binary, node};
 use crate::expr::ast::{BinaryOp, Builtin, Expr, ExprKind};
