@@ -20,7 +20,7 @@ const EDGES: &[(&str, &[&str])] = &[
     ("expr", &["diag", "num"]),
     ("model", &["diag", "num", "expr"]),
     ("analysis", &["diag", "num", "expr", "model"]),
-    ("report", &["diag", "expr", "model", "analysis"]),
+    ("report", &["diag", "expr", "model", "num", "analysis"]),
     ("app", &["diag", "model", "analysis", "report"]),
     ("ui", &["diag", "model", "analysis", "report", "app"]),
     ("shell", &["diag", "model", "analysis", "report", "app", "ui"]),

@@ -17,7 +17,7 @@ mod search;
 pub mod starts;
 mod witness;
 
-use std::sync::OnceLock;
+use std::sync::{Mutex, OnceLock};
 
 use crate::expr::graph::{Graph, NodeId};
 use crate::expr::tape::Tape;
@@ -123,7 +123,7 @@ impl Budget<'_> {
 }
 
 /// Walks into which the faces are divided, for each worker: faces differ, and a worker that is done takes the next.
-const WALKS_A_WORKER: usize = 8;
+const WALKS_A_WORKER: usize = 32;
 
 /// The equations to be solved: rates of change, or for a map what it adds to the state.
 pub struct Problem<'p> {
@@ -193,11 +193,18 @@ pub fn find(graph: &mut Graph, problem: &Problem<'_>, budget: &Budget<'_>) -> Eq
     whole.finish(graph, problem)
 }
 
-/// Walks at once, each with a graph of its own; what they find is put together in the order of the walks.
+/// Walks at once; what they find is put together in the order of the walks. A graph serves one walk at a time and goes
+/// on to the next: what earlier walks left in it changes no result.
 fn at_once(walks: &[Faces], graph: &Graph, problem: &Problem<'_>, budget: &Budget<'_>) -> Whole {
+    let graphs: Mutex<Vec<Graph>> = Mutex::new(Vec::new());
     let found: Vec<OnceLock<Whole>> = walks.iter().map(|_| OnceLock::new()).collect();
     budget.workers.run(walks.len(), &|job| {
-        let whole = Whole::of(walks[job].clone(), &mut graph.clone(), problem, budget);
+        let spare = graphs.lock().ok().and_then(|mut graphs| graphs.pop());
+        let mut own = spare.unwrap_or_else(|| graph.clone());
+        let whole = Whole::of(walks[job].clone(), &mut own, problem, budget);
+        if let Ok(mut graphs) = graphs.lock() {
+            graphs.push(own);
+        }
         // Each job runs once, so its place is free.
         let _ = found[job].set(whole);
     });
