@@ -1,6 +1,6 @@
 //! `restpoint table`: the equilibria of each scenario, for a reader and for a program.
 //!
-//! [`text`] is for reading: as wide as it is told, in ASCII and without colour if asked, what is proved told from what is
+//! [`text()`] is for reading: as wide as it is told, in ASCII and without colour if asked, what is proved told from what is
 //! not by a word on every line. [`json`] is the same as data, in the keys of the contract. Both only present what a
 //! [`Table`] holds, and both go through the one list of [`COLUMNS`]: to show something more of an equilibrium, add a
 //! column there. `identity` names equilibria, `number` rounds, `words` has what both formats say, `layout` makes lines.

@@ -3,7 +3,7 @@
 //! Then the equilibria on a face are the solutions of one linear system, and enumeration is exact. `recognise` reads growth
 //! and matrix off the graph, however the rows were written; `enumerate` solves every face while faces are few, `singular`
 //! says what a face holds whose matrix is singular; `assembly` pivots to a community that no absent species invades where
-//! faces are too many. All produce [`Equilibria`](super::Equilibria), as the search for general rates does.
+//! faces are too many. All produce [`Equilibria`], as the search for general rates does.
 
 mod assembly;
 mod enumerate;
