@@ -1,6 +1,6 @@
 //! What can be wrong in a formula, in words.
 //!
-//! [`Words`] is the table; to say something new, add a row and a file of its name, after `formula_`, to
+//! `Words` is the table; to say something new, add a row and a file of its name, after `formula_`, to
 //! `tests/files/errors`. Which row fits what stands in the formula is chosen here where the choice is one of wording, in
 //! `parse` where it is one of grammar.
 
