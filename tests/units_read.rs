@@ -30,6 +30,7 @@ fn units_are_read_as_written() {
     check(" ind ", "ind");
     check("individuals per hectare", "ind/ha");
     check("/d", "1/d");
+    check("per ind per yr", "1/(ind*yr)");
     check("t/km2/yr", "t/(km2*yr)");
     check("kg^0.75", "kg^0.75");
     check("kg^(3/4)", "kg^0.75");

@@ -41,6 +41,7 @@ pub(super) enum Message {
     YamlColon: "this cannot be read as YAML: a second colon on the line", "", "quote the text if the colon belongs to it: \"{0}\"";
     YamlBraces: "this cannot be read as YAML: a second colon on the line", "", "a map inside a line stands in braces: {{0}}; if the colon belongs to a text, quote it";
     YamlDeeper: "this cannot be read as YAML: the line is indented deeper than the one before it", "a key in line with those beside it", "align the keys of one map in one column";
+    YamlAfterValue: "this cannot be read as YAML: the value before this has ended already", "the end of the line", "delete what follows the value; inside single quotes write a single quote twice";
     YamlDash: "this cannot be read as YAML: an entry of a list stands among keys", "a key", "delete the \"- \" before it";
     YamlTab: "this cannot be read as YAML: a tab stands where only spaces may indent", "spaces", "replace the tab by spaces";
     YamlMapOpen: "this cannot be read as YAML: the braces that open here are not closed properly", "", "close with \"}\", and put a comma between entries";
@@ -59,11 +60,13 @@ pub(super) enum Message {
     UnknownKeyNear: "{0} has no key \"{1}\"", "\"{2}\"", "\"{2}\" is {3}";
     MissingKey: "{0} lacks the key \"{1}\"", "\"{1}\", {2}", "for example {3}";
     Missing: "{0} has no value", "{1}", "write the value after the colon, or delete the key";
+    MissingComment: "{0} has no value, for \"#\" begins a comment", "{1}", "quote the value if the \"#\" belongs to it";
     NotOneValue: "{0} must be a single value", "{1}", "write one value in place of the list or map";
     NotAList: "{0} must be a list", "{1}", "write a list in brackets: [a, b]";
     NotANumber: "{0} is not a number: \"{1}\"", "a number", "write a plain number such as 0.25 or 1.5e-3";
     QuotedNumber: "{0} is a text that looks like a number: \"{1}\"", "a number", "delete the quotation marks";
     DecimalComma: "{0} is not a number: \"{1}\"", "a number", "write the decimal point, not a comma: {2}";
+    NumberDash: "{0} is not a number: \"{1}\"", "a number", "write the plain hyphen for the minus sign: {2}";
     DigitGroups: "{0} is not a number: \"{1}\"", "a number", "write the digits without spaces or marks between them: {2}";
     LeadingZero: "{0} begins with a zero, which YAML takes for a text: \"{1}\"", "a number", "write {2}";
     NumberWithUnit: "{0} is not a number alone: \"{1}\"", "a number", "write the number alone; a parameter's unit has a key of its own: {2}";

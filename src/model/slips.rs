@@ -56,7 +56,8 @@ pub(super) fn explain(text: &str, source: SourceId, fault: &Fault) -> Diagnostic
         Some(Message::YamlStart) if word == "\t" => Message::YamlTab.at(here, &[]),
         Some(Message::YamlColon) => second_colon(text, source, fault),
         Some(Message::YamlKeyColon) => {
-            let span = Span::new(here.span.start, line_at(text, here.span.start).end);
+            let end = line_at(text, here.span.start).end.max(here.span.end);
+            let span = Span::new(here.span.start, end);
             Message::YamlKeyColon.at(Location { source, span }, &[])
         }
         Some(Message::YamlMapOpen) if text.get(fault.at..).is_some_and(|rest| rest.starts_with(':')) => {
@@ -64,6 +65,9 @@ pub(super) fn explain(text: &str, source: SourceId, fault: &Fault) -> Diagnostic
             Message::YamlComma.at(Location { source, span: Span::new(key, fault.at) }, &[])
         }
         Some(Message::YamlIndent) if word == "-" => related(Message::YamlDash, "the map begins here"),
+        Some(Message::YamlIndent) if !text[line.start..here.span.start.max(line.start)].trim().is_empty() => {
+            Message::YamlAfterValue.at(here, &[])
+        }
         Some(Message::YamlIndent) => related(Message::YamlIndent, "the map begins here"),
         Some(Message::YamlItem) => related(Message::YamlItem, "the list begins here"),
         Some(message) => message.at(here, &[&word]),
@@ -75,6 +79,12 @@ pub(super) fn explain(text: &str, source: SourceId, fault: &Fault) -> Diagnostic
 fn second_colon(text: &str, source: SourceId, fault: &Fault) -> Diagnostic {
     let line = line_at(text, fault.at);
     let before_colon = &text[line.start..fault.at.clamp(line.start, line.end)];
+    let is_key = |head: &str| !head.trim().is_empty() && !head.contains(": ");
+    let begin = |line: Span| line.end - text[line.start..line.end].trim_start().len();
+    if let Some((head, _)) = before_colon.split_once('{').filter(|(head, _)| is_key(head)) {
+        let span = Span::new(begin(line), line.start + head.trim_end().len());
+        return Message::YamlKeyColon.at(Location { source, span }, &[]);
+    }
     if before_colon.contains(": ") {
         let here = Location { source, span: character(text, fault.at) };
         let value = value_of(&text[line.start..line.end]);
@@ -83,7 +93,6 @@ fn second_colon(text: &str, source: SourceId, fault: &Fault) -> Diagnostic {
         return message.at(here, &[&value]);
     }
     let before = line_at(text, text[..line.start].trim_end().len().saturating_sub(1));
-    let begin = |line: Span| line.end - text[line.start..line.end].trim_start().len();
     if text[before.start..before.end].contains(": ") {
         let span = Span::new(begin(line), fault.at.max(begin(line)));
         return Message::YamlDeeper.at(Location { source, span }, &[]);

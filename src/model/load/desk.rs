@@ -153,7 +153,8 @@ impl<'f> Desk<'f> {
         match &node.kind {
             Kind::Scalar(scalar) => match scalar.typed() {
                 Typed::Null => {
-                    self.say(Message::Missing, node.at, &[&name, &what]);
+                    let message = if self.is_before_comment(node) { Message::MissingComment } else { Message::Missing };
+                    self.say(message, node.at, &[&name, &what]);
                     None
                 }
                 typed => Some(typed),
@@ -164,6 +165,12 @@ impl<'f> Desk<'f> {
                 None
             }
         }
+    }
+
+    /// Whether a comment follows on the line where a value is missing.
+    fn is_before_comment(&self, node: &Node) -> bool {
+        let source = self.sources.get(node.at.source).map_or("", |source| source.text.as_str());
+        source.get(node.at.span.end..).is_some_and(|rest| rest.trim_start_matches([' ', '\t']).starts_with('#'))
     }
 
     /// Any single value as the text that was written.

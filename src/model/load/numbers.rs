@@ -20,6 +20,10 @@ pub(super) fn why_not_a_number(text: &str, plain: bool) -> (Message, String) {
             if thousands { format!("{pointed}, or {joined} where the comma marks thousands") } else { pointed };
         return (Message::DecimalComma, advice);
     }
+    let hyphened = trimmed.replace(['−', '–'], "-");
+    if hyphened != trimmed && is_number(&hyphened) {
+        return (Message::NumberDash, hyphened);
+    }
     let joined: String = trimmed.chars().filter(|c| !is_group_mark(*c)).collect();
     if joined.len() < trimmed.len() && is_number(&joined) {
         return (Message::DigitGroups, joined);
@@ -85,6 +89,7 @@ mod tests {
         for (text, plain, message, advice) in [
             ("0.5", false, Message::QuotedNumber, ""),
             ("1,5", true, Message::DecimalComma, "1.5"),
+            ("−0.7", true, Message::NumberDash, "-0.7"),
             ("1_000", true, Message::DigitGroups, "1000"),
             ("1 000", true, Message::DigitGroups, "1000"),
             ("1,000,000", true, Message::DigitGroups, "1000000"),

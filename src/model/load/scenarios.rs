@@ -13,8 +13,8 @@ use crate::model::{Formula, Harvest, ParameterId, Placed, Process, Scenario, Spe
 pub(super) struct Base<'m> {
     pub(super) processes: &'m [Process],
     pub(super) harvest: &'m [Harvest],
-    /// Names of all processes and harvests, also of those that could not be read.
-    pub(super) parts: Vec<&'m str>,
+    /// Names of all processes and harvests, also of those that could not be read; `None` where a section was not found.
+    pub(super) parts: Option<Vec<&'m str>>,
     pub(super) time: &'m TimeKind,
     /// Where the title stands, for the scenario that is there when the file has none.
     pub(super) title_at: Location,
@@ -79,13 +79,14 @@ fn values(desk: &mut Desk<'_>, fields: &Fields<'_>, names: &Names) -> Vec<(Param
 fn without(desk: &mut Desk<'_>, fields: &Fields<'_>, base: &Base<'_>) -> Vec<Placed<String>> {
     let what = "a list of processes and harvests, such as [trawl]";
     let Some(node) = fields.get("without").filter(|node| !is_null(node)) else { return Vec::new() };
-    let known = &base.parts;
     let mut found: Vec<Placed<String>> = Vec::new();
     for node in desk.list(node, "\"without\"", what).unwrap_or_default() {
         let Some(name) = desk.text(node, "\"without\"", "the name of a process or harvest") else { continue };
         if let Some(first) = found.iter().find(|other| other.value == name.value) {
             desk.say_both(Message::WithoutTwice, name.at, &[&name.value], (first.at, "first here"));
-        } else if !known.contains(&name.value.as_str()) {
+        } else if let Some(known) = &base.parts
+            && !known.contains(&name.value.as_str())
+        {
             match desk.nearest(&name.value, known.iter().copied()) {
                 Some(near) => desk.say(Message::UnknownPartNear, name.at, &[&name.value, &near]),
                 None => desk.say(Message::UnknownPart, name.at, &[&name.value, &known.join(", ")]),

@@ -17,7 +17,7 @@ pub(super) fn model(desk: &mut Desk<'_>, root: &Node) -> Option<Model> {
     let note = desk.note(&fields);
     let (time_unit, time) = species::time(desk, &fields);
     let mut names = Names::default();
-    names.incomplete = misspelt_section(root);
+    names.incomplete = is_misspelt(root, &["species", "parameters", "shorthand", "lotka_volterra"]);
     let raw = block::open(desk, &fields, &mut names);
     let mut species = species::declared(desk, &fields, &mut names);
     if let Some(raw) = &raw {
@@ -39,7 +39,9 @@ pub(super) fn model(desk: &mut Desk<'_>, root: &Node) -> Option<Model> {
     let draws = draws::read(desk, &fields, &names, &mut parameters);
     let correlations = parameters::correlations(desk, &fields, &names, &parameters, draws.as_ref());
     let title_at = title.as_ref().map_or(root.at, |title| title.at);
-    let parts = ["processes", "harvest"].into_iter().flat_map(|key| keys_of(&fields, key)).collect();
+    let sections = ["processes", "harvest"];
+    let parts = sections.into_iter().flat_map(|key| keys_of(&fields, key)).collect();
+    let parts = if is_misspelt(root, &sections) { None } else { Some(parts) };
     let base = scenarios::Base { processes: &processes, harvest: &harvest, parts, time: &time, title_at };
     let scenarios = scenarios::read(desk, &fields, &names, &base);
     let sketch = scenarios::sketch(desk, &fields, &names);
@@ -77,12 +79,11 @@ fn keys_of<'n>(fields: &Fields<'n>, section: &str) -> impl Iterator<Item = &'n s
     entries.iter().map(|entry| entry.key.as_str())
 }
 
-/// Whether an unknown key was meant for a section that declares names; their uses must not be reported as well.
-fn misspelt_section(root: &Node) -> bool {
+/// Whether an unknown key was meant for one of these sections; uses of what it declares must not be reported as well.
+fn is_misspelt(root: &Node, sections: &[&str]) -> bool {
     let Kind::Mapping(entries) = &root.kind else { return false };
-    let declaring = ["species", "parameters", "shorthand", "lotka_volterra"];
-    let unknown = entries.iter().filter(|entry| MODEL.keys.iter().all(|key| key.name != entry.key));
-    unknown.into_iter().any(|entry| nearest(&entry.key, declaring).is_some())
+    let mut unknown = entries.iter().filter(|entry| MODEL.keys.iter().all(|key| key.name != entry.key));
+    unknown.any(|entry| nearest(&entry.key, sections.iter().copied()).is_some())
 }
 
 fn count(desk: &mut Desk<'_>, species: &[Species], root: &Node, names: &Names) {

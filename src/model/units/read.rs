@@ -77,7 +77,7 @@ impl<'t> Reader<'t> {
     fn product(&mut self) -> Result<Unit, Malformed> {
         let mut unit = Unit::one();
         self.skip_spaces();
-        let mut power = if self.peek() == Some('/') { self.operator().unwrap_or(1.0) } else { 1.0 };
+        let mut power = if matches!(self.peek(), Some('/' | 'p')) { self.operator().unwrap_or(1.0) } else { 1.0 };
         loop {
             unit.multiply(&self.factor()?, power);
             match self.operator() {
