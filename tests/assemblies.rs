@@ -28,7 +28,7 @@ fn uninvadable(whole: &Whole) -> Option<Vec<Vec<usize>>> {
 
 #[test]
 fn pivoting_ends_at_one_of_all_uninvadable_communities() {
-    let mut source = Source(4);
+    let mut source = Source::new(4);
     let (mut alone, mut among_several, mut rays) = (0, 0, 0);
     for seed in 0..400 {
         let n = if seed % 40 == 0 { 10 } else { 2 + seed % 7 };
@@ -57,7 +57,7 @@ fn pivoting_ends_at_one_of_all_uninvadable_communities() {
 
 #[test]
 fn a_large_community_gets_its_assembly_and_says_what_is_not_proved() {
-    let mut source = Source(5);
+    let mut source = Source::new(5);
     let n = 40;
     let growth = (0..n).map(|_| Interval::point(source.between(0.1, 1.0))).collect();
     let entry = |k: usize| if k / n == k % n { -1.0 } else { source.between(-0.15, 0.05) };

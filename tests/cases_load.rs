@@ -99,7 +99,7 @@ fn slopes_are_the_published_ones() {
 /// A list that lacked an equilibrium would be found out here, if it is one that Newton's method reaches.
 #[test]
 fn no_search_from_many_starts_finds_an_equilibrium_that_is_not_published() {
-    let mut source = Source(1);
+    let mut source = Source::new(1);
     let mut reached = 0;
     for case in all().iter().filter(|case| !case.facts.contains_key("continua")) {
         let mut read = case.text().read();

@@ -33,7 +33,7 @@ fn width_around(side: Interval, numerator: i128, denominator: i128) -> f64 {
 
 #[test]
 fn whole_numbers_are_solved_as_exact_fractions_say() {
-    let mut source = Source(1);
+    let mut source = Source::new(1);
     let (mut listed, mut singular, mut degenerate, mut widest) = (0, 0, 0, 0.0f64);
     for seed in 0..300 {
         let n = 2 + seed % 6;
@@ -74,7 +74,7 @@ fn whole_numbers_are_solved_as_exact_fractions_say() {
 
 #[test]
 fn the_search_for_general_rates_finds_the_same() {
-    let mut source = Source(2);
+    let mut source = Source::new(2);
     let mut compared = 0;
     for seed in 0..60 {
         let n = 2 + seed % 4;
@@ -212,7 +212,7 @@ fn the_box_is_kept() {
 
 #[test]
 fn units_do_not_matter() {
-    let mut source = Source(3);
+    let mut source = Source::new(3);
     for seed in 0..40 {
         let n = 2 + seed % 6;
         let whole = Whole::random(&mut source, n, [-9, 7], 12).affine();

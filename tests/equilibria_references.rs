@@ -46,7 +46,7 @@ fn found(family: &Family) -> Vec<Vec<f64>> {
     let read = family.text.read();
     let tape = read.system.plans[0].tape(&read.system.graph);
     let mut newton = Newton::new(&read, 0, &tape);
-    let mut source = Source(1);
+    let mut source = Source::new(1);
     let mut found: Vec<Vec<f64>> = Vec::new();
     for _ in 0..400 {
         let absent = |source: &mut Source| source.unit() < 0.2;

@@ -180,7 +180,7 @@ fn each_patch_has_one_state_of_each_kind_whatever_comes_in() {
 
 #[test]
 fn a_seed_makes_the_same_web_again_and_another_makes_another() {
-    assert_eq!(Source(0).bits(), 0xe220_a839_7b1d_cdaf, "the first number of SplitMix64 from 0");
+    assert_eq!(Source::new(0).bits(), 0xe220_a839_7b1d_cdaf, "the first number of SplitMix64 from 0");
     for make in [webs::web, webs::webx, linear::lotka_volterra] {
         let yaml = |seed| make(5, seed).text.yaml();
         assert_eq!(yaml(7), yaml(7));
@@ -198,7 +198,7 @@ fn a_seed_makes_the_same_web_again_and_another_makes_another() {
 /// A list that lacked an equilibrium would be found out here, if it is one that Newton's method reaches.
 #[test]
 fn no_search_from_many_starts_finds_an_equilibrium_that_is_not_listed() {
-    let mut source = Source(1);
+    let mut source = Source::new(1);
     let mut reached = 0;
     for family in examples().iter().filter(|family| family.complete) {
         let mut read = family.text.read();

@@ -75,7 +75,7 @@ fn near_kink(tape: &Tape, state: &[f64; 3], parameters: &[f64; 4]) -> bool {
 
 #[test]
 fn derivatives_of_every_function_match_differences() {
-    let mut source = Source(1);
+    let mut source = Source::new(1);
     let mut checked = 0;
     for text in FORMULAS {
         let mut graph = graph();
@@ -136,7 +136,7 @@ fn derivatives_of_every_function_match_differences() {
 
 #[test]
 fn gradients_and_jets_agree_with_the_graph() {
-    let mut source = Source(2);
+    let mut source = Source::new(2);
     for text in FORMULAS {
         let mut graph = graph();
         let f = node(&mut graph, text);
@@ -177,7 +177,7 @@ fn gradients_and_jets_agree_with_the_graph() {
 
 #[test]
 fn enclosures_hold_values_and_gradients() {
-    let mut source = Source(3);
+    let mut source = Source::new(3);
     for text in FORMULAS {
         let mut graph = graph();
         let f = node(&mut graph, text);
@@ -217,7 +217,7 @@ fn enclosures_hold_values_and_gradients() {
 
 #[test]
 fn lanes_equal_scalars_bit_for_bit() {
-    let mut source = Source(4);
+    let mut source = Source::new(4);
     for text in FORMULAS {
         let mut graph = graph();
         let f = node(&mut graph, text);
@@ -279,7 +279,7 @@ const DIVISIBLE: &[&str] = &[
 
 #[test]
 fn a_divided_row_times_x_is_the_row() {
-    let mut source = Source(5);
+    let mut source = Source::new(5);
     for text in DIVISIBLE {
         let mut graph = graph();
         let row = node(&mut graph, text);

@@ -38,7 +38,7 @@ const ROWS: &[&str] = &[
 
 #[test]
 fn a_root_survives_every_sweep() {
-    let mut source = Source(11);
+    let mut source = Source::new(11);
     let mut cut = 0;
     for (first, text) in ROWS.iter().enumerate() {
         let other = ROWS[(first * 7 + 3) % ROWS.len()];

@@ -74,7 +74,7 @@ fn same(a: &Equilibrium, b: &Equilibrium) -> bool {
 
 #[test]
 fn every_hit_is_an_equilibrium_and_few_are_missed() {
-    let mut source = Source(11);
+    let mut source = Source::new(11);
     let (mut all_of_them, mut missed) = (0, 0);
     for seed in 0..40 {
         let text = web(&mut source, 3 + seed % 3);
@@ -95,7 +95,7 @@ fn every_hit_is_an_equilibrium_and_few_are_missed() {
 
 #[test]
 fn workers_do_not_change_the_list() {
-    let mut source = Source(12);
+    let mut source = Source::new(12);
     for n in [4, 6] {
         let text = web(&mut source, n);
         let alone = solve(&text, starts::find, &BUDGET);
@@ -127,7 +127,7 @@ fn roots_at_joint_absence_and_of_maps_are_found() {
 /// No box a face is not enough for the certified search; what it lacks comes from starting points.
 #[test]
 fn a_search_that_runs_out_is_helped() {
-    let text = web(&mut Source(15), 5);
+    let text = web(&mut Source::new(15), 5);
     let certified = solve(&text, find, &Budget { boxes: 50_000, ..BUDGET });
     let short = Budget { boxes: 0, ..BUDGET };
     let (alone, helped) = (solve(&text, find, &short), solve(&text, all, &short));
@@ -141,7 +141,7 @@ fn a_search_that_runs_out_is_helped() {
 
 #[test]
 fn a_large_web_gets_a_list_that_is_not_complete() {
-    let mut source = Source(13);
+    let mut source = Source::new(13);
     for n in [9, 14] {
         let text = web(&mut source, n);
         let found = solve(&text, all, &Budget { boxes: 800, ..BUDGET });
@@ -161,7 +161,7 @@ fn a_large_web_gets_a_list_that_is_not_complete() {
 
 #[test]
 fn stop_is_heard() {
-    let mut source = Source(14);
+    let mut source = Source::new(14);
     let text = web(&mut source, 11);
     let begun = Instant::now();
     let found = solve(

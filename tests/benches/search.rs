@@ -102,7 +102,7 @@ fn multistart(read: &mut Read, known: &Equilibria, starts: usize) -> (f64, usize
     let begun = Instant::now();
     let n = read.model.species.len();
     let mut hits: Vec<Vec<f64>> = Vec::new();
-    let mut source = common::Source(1);
+    let mut source = common::Source::new(1);
     let graph = &mut read.system.graph;
     let plan = read.system.plans[0].clone();
     for face in 0..1usize << n {

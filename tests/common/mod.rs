@@ -10,6 +10,8 @@ pub mod text;
 pub mod whole;
 pub mod workers;
 
+pub use restpoint::num::random::Source;
+
 use restpoint::expr::graph::{Graph, NodeId};
 use restpoint::expr::parse::parse;
 use restpoint::num::interval::Interval;
@@ -35,25 +37,4 @@ pub fn node(graph: &mut Graph, text: &str) -> NodeId {
         let i = PARAMETERS.iter().position(|parameter| *parameter == name);
         graph.parameter(i.unwrap_or_else(|| panic!("unknown name {name} in {text}")))
     })
-}
-
-/// A small reproducible source of numbers in [0, 1) (Steele, Lea & Flood 2014, SplitMix64).
-pub struct Source(pub u64);
-
-impl Source {
-    pub fn bits(&mut self) -> u64 {
-        self.0 = self.0.wrapping_add(0x9e37_79b9_7f4a_7c15);
-        let mut z = self.0;
-        z = (z ^ (z >> 30)).wrapping_mul(0xbf58_476d_1ce4_e5b9);
-        z = (z ^ (z >> 27)).wrapping_mul(0x94d0_49bb_1331_11eb);
-        z ^ (z >> 31)
-    }
-
-    pub fn unit(&mut self) -> f64 {
-        (self.bits() >> 11) as f64 / (1u64 << 53) as f64
-    }
-
-    pub fn between(&mut self, low: f64, high: f64) -> f64 {
-        low + (high - low) * self.unit()
-    }
 }

@@ -56,7 +56,7 @@ pub fn hidden_fold(n: usize, seed: u64) -> Family {
 
 /// The model, the middle of the pair, B⁻¹ e₁, and s.
 fn hidden(n: usize, gap: f64, seed: u64, title: &str) -> (ModelText, Vec<f64>, Vec<f64>, f64) {
-    let mut source = Source(seed);
+    let mut source = Source::new(seed);
     let (b, inverse) = unimodular(n, &mut source);
     let (mixing, _) = unimodular(n, &mut source);
     let centre: Vec<f64> = (0..n).map(|_| whole(&mut source, 2, 4) as f64).collect();

@@ -84,7 +84,7 @@ fn solve(mut rows: Vec<Vec<i128>>) -> Option<(i128, Vec<i128>)> {
 
 /// A community of which all equilibria are simple, with them.
 fn community(n: usize, seed: u64) -> (Community, Vec<Point>) {
-    let mut source = Source(seed);
+    let mut source = Source::new(seed);
     let drawn = (0..100).find_map(|_| {
         let community = Community::draw(n, &mut source);
         community.equilibria().map(|equilibria| (community, equilibria))

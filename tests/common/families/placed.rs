@@ -15,7 +15,7 @@ fn rising(source: &mut Source) -> [f64; 3] {
 
 /// Uncoupled rows `x (x − a)(b − x)`: all 3ⁿ combinations of 0, a and b.
 pub fn cubics(n: usize, seed: u64) -> Family {
-    let mut source = Source(seed);
+    let mut source = Source::new(seed);
     let roots: Vec<[f64; 3]> = (0..n).map(|_| rising(&mut source)).map(|[_, a, b]| [0.0, a, b]).collect();
     let row = |(x, [_, a, b]): (&String, &[f64; 3])| format!("{x}*({x} - {a})*({b} - {x})");
     let rows: Vec<_> = symbols(n).iter().zip(&roots).map(row).collect();
@@ -24,7 +24,7 @@ pub fn cubics(n: usize, seed: u64) -> Family {
 
 /// Rows `(x − a)(x − b)(c − x)`, multiplied out and each added to the one before: all 3ⁿ combinations of a, b and c.
 pub fn expanded_cubics(n: usize, seed: u64) -> Family {
-    let mut source = Source(seed);
+    let mut source = Source::new(seed);
     let roots: Vec<[f64; 3]> = (0..n).map(|_| rising(&mut source)).collect();
     let expanded = |(x, [a, b, c]): (&String, &[f64; 3])| {
         let powers = [format!("{x}^3"), format!("{x}^2"), x.clone(), String::new()];
@@ -108,7 +108,7 @@ impl Curve {
 ///
 /// Draws in which a root is not simple, or lies on an axis or above the box, are drawn again.
 pub fn lines_and_circles(seed: u64) -> Family {
-    let mut source = Source(seed);
+    let mut source = Source::new(seed);
     let name = format!("lines and circles, seed {seed}");
     let drawn = (0..1000).find_map(|_| draw(&mut source));
     let (curves, points) = drawn.unwrap_or_else(|| panic!("no simple roots for seed {seed}"));

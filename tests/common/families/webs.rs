@@ -62,7 +62,7 @@ fn one_of<T: Copy>(source: &mut Source, all: &[T]) -> T {
 }
 
 fn draw(n: usize, seed: u64, mixed: bool) -> Vec<Member> {
-    let mut source = Source(seed);
+    let mut source = Source::new(seed);
     let producers = n.div_ceil(2);
     let member = |i: usize| {
         let s = &mut source;
@@ -159,7 +159,7 @@ pub fn six_species() -> Family {
 /// find 46 equilibria.
 pub fn dense_six_species() -> Family {
     let mut members = draw(6, 21, false);
-    let mut source = Source(21);
+    let mut source = Source::new(21);
     for (i, member) in members.iter_mut().enumerate().skip(3) {
         member.exponent = 2.0;
         member.crowding = Crowding::Interference(0.5);
