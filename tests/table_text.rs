@@ -4,6 +4,7 @@
 mod cli_support;
 
 use cli_support::{fast, run, run_on};
+use restpoint::analysis::assess::Assessment;
 use restpoint::analysis::equilibria::{Derivative, Equilibria, Equilibrium, Probably, Unresolved};
 use restpoint::diag::Diagnostic;
 use restpoint::model::Model;
@@ -43,7 +44,7 @@ fn unresolved(sides: [[f64; 2]; 2], probably: Probably, text: &str) -> Unresolve
 
 fn solved(list: Vec<Equilibrium>, unresolved: Vec<Unresolved>, complete: bool) -> Solved {
     let equilibria = Equilibria { list, unresolved, complete, none_above: false, boxes: 7, faces: 4 };
-    Solved { values: vec![0.9, 0.5], equilibria }
+    Solved { values: vec![0.9, 0.5], equilibria, assessment: Assessment::default() }
 }
 
 /// A scenario with nothing but proofs, one with everything else, one that failed.

@@ -2,6 +2,7 @@
 
 use std::path::Path;
 
+use crate::analysis::assess::Assessment;
 use crate::analysis::equilibria::{Budget, Problem, all, balance};
 use crate::diag::Diagnostic;
 use crate::diag::cleanse::cleanse;
@@ -132,7 +133,7 @@ impl Solver<'_> {
             observer: Some(&|done| meter.add(done)),
         };
         let equilibria = all(graph, &Problem { rows: &rows, values: &plan.values, sides: &sides }, &budget);
-        Solved { values: plan.values.clone(), equilibria }
+        Solved { values: plan.values.clone(), equilibria, assessment: Assessment::default() }
     }
 }
 

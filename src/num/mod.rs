@@ -2,12 +2,13 @@
 //!
 //! [`interval`] is the number type that proofs are made of; [`round`] gives the directed bounds under it, [`elementary`]
 //! the scalar functions that every number type shares, [`quotient`] the functions f(u)/u that stay smooth at 0; [`solve`]
-//! encloses solutions of linear systems, [`complementarity`] pivots to a community that no absent species invades. To add a
+//! encloses solutions of linear systems, [`complementarity`] pivots to a community that no absent species invades; [`eigen`] has eigenvalues and their vectors. To add a
 //! function, give its scalar form in [`elementary`], its enclosure in [`interval`], and rows of references to
 //! `tests/data/interval_references.py`.
 
 pub mod complementarity;
 pub mod dense;
+pub mod eigen;
 pub mod elementary;
 pub mod interval;
 pub mod quotient;

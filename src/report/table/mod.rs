@@ -28,6 +28,7 @@ pub use text::{Page, text};
 
 pub use super::check::Style;
 
+use crate::analysis::assess::Assessment;
 use crate::analysis::equilibria::{Equilibria, Equilibrium};
 use crate::diag::Diagnostic;
 use crate::model::system::bounds::Bound;
@@ -81,6 +82,8 @@ pub struct Solved {
     pub values: Vec<f64>,
     /// Its equilibria, and what could not be decided.
     pub equilibria: Equilibria,
+    /// What is said of each of them.
+    pub assessment: Assessment,
 }
 
 impl Solved {
