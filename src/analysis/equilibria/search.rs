@@ -22,6 +22,9 @@ const SWEEPS: usize = 3;
 const SMALLEST: f64 = 1e-6;
 /// No side may get this many times wider, relatively, than the one that is cut.
 const LOPSIDED: f64 = 32.0;
+/// A side whose ends differ by this factor spans orders of magnitude. With it, and the place at which such a side is cut,
+/// random webs took fewest boxes of eight pairs tried: 6 % fewer than with 16 and an eighth.
+const WIDE_SPAN: f64 = 32.0;
 
 /// What one face holds.
 #[derive(Debug, Default)]
@@ -269,7 +272,7 @@ fn largest(values: &[f64]) -> usize {
     best
 }
 
-/// The middle, or for a side that spans orders of magnitude an eighth of its upper end.
+/// The middle, or for a side that spans orders of magnitude a quarter of its upper end.
 fn place_to_halve(side: Interval) -> f64 {
-    if side.lo() >= 0.0 && side.lo() < side.hi() / 16.0 { side.hi() / 8.0 } else { side.mid() }
+    if side.lo() >= 0.0 && side.lo() < side.hi() / WIDE_SPAN { side.hi() / 4.0 } else { side.mid() }
 }
