@@ -39,7 +39,7 @@ fn equilibrium(state: [f64; 2], radius: f64, proven: bool, derivative: Derivativ
 
 fn unresolved(sides: [[f64; 2]; 2], probably: Probably, text: &str) -> Unresolved {
     let region = sides.map(|side| Interval::new(side[0], side[1])).to_vec();
-    Unresolved { region, probably, text: text.to_owned(), witnesses: Vec::new() }
+    Unresolved { region, probably, text: text.to_owned(), dimension: None, witnesses: Vec::new() }
 }
 
 fn solved(list: Vec<Equilibrium>, unresolved: Vec<Unresolved>, complete: bool) -> Solved {

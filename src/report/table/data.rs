@@ -2,7 +2,7 @@
 
 use serde_json::{Map, Value, json};
 
-use crate::analysis::equilibria::Unresolved;
+use crate::analysis::equilibria::{Probably, Unresolved};
 use crate::diag::Diagnostic;
 use crate::diag::render::position;
 use crate::model::{ParameterId, Scenario, TimeKind};
@@ -77,7 +77,14 @@ fn unresolved(table: &Table<'_>, one: &Unresolved) -> Value {
     let species = table.model.species.iter().zip(&one.region);
     let sides: Map<String, Value> =
         species.map(|(species, interval)| (species.symbol.clone(), side(interval))).collect();
-    json!({"box": sides, "probably": words::probably(one.probably), "text": one.text})
+    let mut open = json!({"box": sides, "probably": words::probably(one.probably), "text": one.text});
+    if one.probably == Probably::Continuum {
+        let symbols = || table.model.species.iter().map(|species| species.symbol.clone());
+        let state = |x: &Vec<f64>| symbols().zip(x.iter().map(|&x| exact(x))).collect::<Map<_, _>>();
+        open["dimension"] = json!(one.dimension);
+        open["witnesses"] = json!(one.witnesses.iter().map(state).collect::<Vec<_>>());
+    }
+    open
 }
 
 fn pair(low: f64, high: f64) -> Value {

@@ -188,7 +188,7 @@ fn undecided(table: &Table<'_>, one: &Unresolved, page: &Page) -> String {
         }
     });
     let place = sides.collect::<Vec<_>>().join(", ");
-    let more = if one.text.is_empty() { String::new() } else { format!("; {}", one.text) };
+    let more = words::known(one, &table.model.species);
     let body = format!("undecided: {}: {place}{more}.", words::probably_in_words(one.probably));
     let lines = page.paragraph("  ?", &body, 4);
     lines.replacen("undecided", &Ink::Undecided.paint("undecided", page), 1)

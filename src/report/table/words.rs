@@ -1,6 +1,9 @@
 //! What text and data say alike.
 
-use crate::analysis::equilibria::{Derivative, Equilibria, Probably};
+use crate::analysis::equilibria::{Derivative, Equilibria, Probably, Unresolved};
+use crate::model::Species;
+
+use super::number::human;
 
 /// What every table ends with.
 pub(super) const CAUTION: &str = "These are local results about a model, no better than its equations and its \
@@ -27,6 +30,17 @@ pub(super) fn probably_in_words(probably: Probably) -> &'static str {
         Probably::Kink => "probably at a kink of the rates",
         Probably::Budget => "the budget ended here",
     }
+}
+
+/// What is known of what is undecided: a sentence, and points of a continuum.
+pub(super) fn known(open: &Unresolved, species: &[Species]) -> String {
+    let state = |state: &Vec<f64>| {
+        let parts = species.iter().zip(state).map(|(species, &x)| format!("{} = {}", species.symbol, human(x)));
+        parts.collect::<Vec<_>>().join(", ")
+    };
+    let points = open.witnesses.iter().map(state).collect::<Vec<_>>().join("; ");
+    let points = if points.is_empty() { points } else { format!("points on it: {points}") };
+    [open.text.clone(), points].into_iter().filter(|part| !part.is_empty()).map(|part| format!("; {part}")).collect()
 }
 
 /// What is claimed above the box, in the contract's words.
