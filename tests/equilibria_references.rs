@@ -1,6 +1,6 @@
 //! Equilibria known to 50 digits: `tests/data/equilibria_references.py` says how they were made.
 
-#![expect(clippy::expect_used, reason = "a broken table is a failed test")]
+#![expect(clippy::expect_used, clippy::panic, reason = "a broken table is a failed test")]
 
 mod common;
 
@@ -8,8 +8,10 @@ use std::collections::BTreeMap;
 
 use common::families::{Family, examples};
 use common::newton::Newton;
+use common::solve::{Method, solve};
 use common::text::Point;
 use common::{Source, cases};
+use restpoint::analysis::equilibria::Equilibrium;
 use restpoint::num::interval::Interval;
 use serde_json::json;
 
@@ -145,4 +147,42 @@ fn published_coordinates_are_those_of_the_f64_models() {
             assert!(listed, "{} {scenario}: {point:?}", case.id);
         }
     }
+}
+
+/// An enclosure with f64 ends holds the root just where it holds the f64 on both sides of it.
+#[test]
+fn the_search_encloses_every_reference_exactly_once_to_the_last_digits() {
+    let families = examples().into_iter().map(|family| (family.name, family.text));
+    let texts: BTreeMap<_, _> =
+        families.chain(cases::all().iter().map(|case| (case.id.clone(), case.text()))).collect();
+    let mut points: BTreeMap<(String, String), Vec<Point>> = BTreeMap::new();
+    for ((name, scenario, _), point) in references() {
+        points.entry((name, scenario)).or_default().push(point);
+    }
+    let mut checked = 0;
+    for ((name, scenario), points) in points {
+        let mut read = texts[&name].read();
+        let number = if scenario.is_empty() { 0 } else { read.model.scenario(&scenario).expect("a scenario") };
+        let found = solve(&mut read, number, Method::Chosen);
+        for point in points {
+            let holds = |e: &&Equilibrium| point.iter().zip(&e.enclosure).all(|(x, side)| x.subset_of(*side));
+            let mut holding = found.list.iter().filter(holds);
+            let (Some(one), None) = (holding.next(), holding.next()) else {
+                panic!("{name} {scenario}: {point:?} is not in exactly one of {:?}", found.list);
+            };
+            for ((x, side), state) in point.iter().zip(&one.enclosure).zip(&one.state) {
+                assert!(side.contains(*state), "{name} {scenario}: {state} {side:?}");
+                // Two steps on either side of the f64 around the root.
+                let narrow = steps(side.lo(), x.lo()).max(steps(x.hi(), side.hi())) <= 2;
+                assert!(narrow, "{name} {scenario}: {x:?} {side:?}");
+            }
+            checked += 1;
+        }
+    }
+    assert!(checked > 150, "{checked}");
+}
+
+/// How many f64 lie from one number up to another of its sign.
+fn steps(from: f64, to: f64) -> u64 {
+    from.to_bits().abs_diff(to.to_bits())
 }

@@ -1,11 +1,11 @@
 //! The table of elementary functions of one argument, and of their quotients f(u)/u.
 //!
-//! A row holds the value, the interval extension, the domain and the derivative as a graph. To add a function: a variant
+//! A row holds the value, its extensions to intervals and to doubles, and the derivative as a graph. To add a function: a variant
 //! of [`Function`], a row in [`FUNCTIONS`], its numeric derivatives in [`Function::derivatives`].
 
 use super::graph::{Graph, NodeId};
 use super::tape::number::{Domain, Number};
-use crate::num::{self, elementary as el, interval::Interval};
+use crate::num::{self, double::Double, elementary as el, interval::Interval};
 
 /// Elementary functions of one argument.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, Hash, PartialOrd, Ord)]
@@ -38,6 +38,8 @@ pub struct FunctionRow {
     pub value: fn(f64) -> f64,
     /// Enclosure of the values; clears the flag where it is not defined and continuous on the whole argument.
     pub interval: fn(Interval, &mut bool) -> Interval,
+    /// The same of a number of some 32 digits.
+    pub double: fn(Double, &mut bool) -> Double,
     /// The derivative at `u`, given the function's own node.
     pub derivative: fn(&mut Graph, u: NodeId, own: NodeId) -> NodeId,
     /// Values at which the function is exactly this: arguments and results.
@@ -51,6 +53,7 @@ pub const FUNCTIONS: &[FunctionRow] = &[
         name: "exp",
         value: el::exp,
         interval: |u, _| u.exp(),
+        double: |u, _| u.exp(),
         derivative: |_, _, own| own,
         exact: &[(0.0, 1.0)],
     },
@@ -59,6 +62,7 @@ pub const FUNCTIONS: &[FunctionRow] = &[
         name: "ln",
         value: el::ln,
         interval: |u, defined| u.ln(defined),
+        double: |u, defined| u.ln(defined),
         derivative: |g, u, _| {
             let one = g.one();
             g.div(one, u)
@@ -70,6 +74,7 @@ pub const FUNCTIONS: &[FunctionRow] = &[
         name: "log10",
         value: el::log10,
         interval: |u, defined| u.log10(defined),
+        double: |u, defined| u.log10(defined),
         derivative: |g, u, _| {
             let (one, ten) = (g.one(), g.constant(10.0));
             let scale = g.apply(Function::Ln, ten);
@@ -83,6 +88,7 @@ pub const FUNCTIONS: &[FunctionRow] = &[
         name: "expm1",
         value: el::expm1,
         interval: |u, _| u.expm1(),
+        double: |u, _| u.expm1(),
         derivative: |g, u, _| g.apply(Function::Exp, u),
         exact: &[(0.0, 0.0)],
     },
@@ -91,6 +97,7 @@ pub const FUNCTIONS: &[FunctionRow] = &[
         name: "log1p",
         value: el::log1p,
         interval: |u, defined| u.log1p(defined),
+        double: |u, defined| u.log1p(defined),
         derivative: |g, u, _| {
             let one = g.one();
             let shifted = g.add(one, u);
@@ -103,6 +110,7 @@ pub const FUNCTIONS: &[FunctionRow] = &[
         name: "sqrt",
         value: f64::sqrt,
         interval: |u, defined| u.sqrt(defined),
+        double: |u, defined| u.sqrt(defined),
         derivative: |g, _, own| {
             let (one, two) = (g.one(), g.constant(2.0));
             let doubled = g.mul(two, own);
@@ -115,6 +123,7 @@ pub const FUNCTIONS: &[FunctionRow] = &[
         name: "abs",
         value: f64::abs,
         interval: |u, _| u.abs(),
+        double: |u, _| u.abs(),
         derivative: |g, u, _| {
             let (zero, one) = (g.zero(), g.one());
             let minus = g.neg(one);
@@ -127,6 +136,7 @@ pub const FUNCTIONS: &[FunctionRow] = &[
         name: "tanh",
         value: el::tanh,
         interval: |u, _| u.tanh(),
+        double: |u, _| u.tanh(),
         derivative: |g, _, own| {
             let one = g.one();
             let square = g.powi(own, 2);

@@ -1,13 +1,14 @@
 //! Pure numerics, one method a file: interval arithmetic and what rests on it. Knows nothing of models.
 //!
 //! [`interval`] is the number type that proofs are made of; [`round`] gives the directed bounds under it, [`elementary`]
-//! the scalar functions that every number type shares, [`quotient`] the functions f(u)/u that stay smooth at 0; [`solve`]
-//! encloses solutions of linear systems, [`complementarity`] pivots to a community that no absent species invades; [`eigen`] has eigenvalues and their vectors. To add a
+//! the scalar functions that every number type shares, [`quotient`] the functions f(u)/u that stay smooth at 0; [`double`]
+//! carries 32 digits with a rigorous error; [`solve`] encloses solutions of linear systems, [`complementarity`] pivots to a community that no absent species invades; [`eigen`] has eigenvalues and their vectors. To add a
 //! function, give its scalar form in [`elementary`], its enclosure in [`interval`], and rows of references to
 //! `tests/data/interval_references.py`.
 
 pub mod complementarity;
 pub mod dense;
+pub mod double;
 pub mod eigen;
 pub mod elementary;
 pub mod interval;

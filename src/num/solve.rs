@@ -33,8 +33,8 @@ pub fn solve(matrix: &[Interval], right: &[Interval], stop: &dyn Fn() -> bool) -
     let scaled = Scaled::new(matrix, right);
     let inverse = inverse_unless(&scaled.middle, n, stop)?;
     let defect = scaled.defect(&inverse, stop)?;
-    let approximate = scaled.refined(&inverse)?;
-    scaled.enclosed(&approximate, &inverse, &defect)
+    let approximate = scaled.refined(&inverse, stop)?;
+    scaled.enclosed(&approximate, &inverse, &defect, stop)
 }
 
 /// Powers of two by which rows and columns are multiplied so that the largest entry of each is near 1; exact, and makes
@@ -130,11 +130,11 @@ impl Scaled {
     }
 
     /// An approximate solution, as good as f64 gives it.
-    fn refined(&self, inverse: &[f64]) -> Option<Vec<f64>> {
+    fn refined(&self, inverse: &[f64], stop: &dyn Fn() -> bool) -> Option<Vec<f64>> {
         let middle: Vec<f64> = self.right.iter().map(|b| b.mid()).collect();
         let mut x = product(inverse, &middle);
         for _ in 0..REFINEMENTS {
-            let residual: Vec<f64> = self.residual(&x).iter().map(|r| r.mid()).collect();
+            let residual: Vec<f64> = self.residual(&x, stop)?.iter().map(|r| r.mid()).collect();
             let before = x.clone();
             x.iter_mut().zip(product(inverse, &residual)).for_each(|(x, step)| *x += step);
             if x == before {
@@ -144,8 +144,8 @@ impl Scaled {
         x.iter().all(|x| x.is_finite()).then_some(x)
     }
 
-    /// b − A x, all rounding errors kept.
-    fn residual(&self, x: &[f64]) -> Vec<Interval> {
+    /// b − A x, all rounding errors kept; `None` where it was stopped.
+    fn residual(&self, x: &[f64], stop: &dyn Fn() -> bool) -> Option<Vec<Interval>> {
         let n = self.n;
         let row = |i: usize| {
             let b = self.right[i];
@@ -160,12 +160,18 @@ impl Scaled {
             }
             sum.enclosure()
         };
-        (0..n).map(row).collect()
+        (0..n).map(|i| (!stop()).then(|| row(i))).collect()
     }
 
     /// x ∈ x̃ + R (b − A x̃) + (I − R A)(x − x̃), in the units from before scaling.
-    fn enclosed(&self, approximate: &[f64], inverse: &[f64], defect: &[f64]) -> Option<Vec<Interval>> {
-        let residual = self.residual(approximate);
+    fn enclosed(
+        &self,
+        approximate: &[f64],
+        inverse: &[f64],
+        defect: &[f64],
+        stop: &dyn Fn() -> bool,
+    ) -> Option<Vec<Interval>> {
+        let residual = self.residual(approximate, stop)?;
         let step = |row: &[f64]| {
             row.iter().zip(&residual).fold(Interval::ZERO, |sum, (&r, &residual)| sum + Interval::point(r) * residual)
         };

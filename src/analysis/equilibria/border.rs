@@ -39,12 +39,10 @@ pub(super) fn settle(graph: &mut Graph, face: &Face, root: &Proved, problem: &Pr
     }
     match exact_zeros(graph, face, root, &near_zero, problem) {
         Some(proved) => Some(Settled::Root(proved)),
-        None => Some(Settled::Open(Unresolved {
-            region: enclosure,
-            probably: Probably::DoubleRoot,
-            text: "an equilibrium on the border, or one beside it, or both: they are too close to be told apart".into(),
-            witnesses: Vec::new(),
-        })),
+        None => {
+            let text = "an equilibrium on the border, or one beside it, or both: they are too close to be told apart";
+            Some(Settled::Open(Unresolved::new(enclosure, Probably::DoubleRoot, text)))
+        }
     }
 }
 
@@ -94,7 +92,8 @@ fn exact_zeros(
     let scale = start.iter().map(|x: &f64| x.abs()).collect();
     let mut equations = Equations::new(&tape, problem.values, scale);
     let point = equations.approximate(&start, None)?;
-    let proved = equations.prove(&point, &around)?;
+    let mut proved = equations.prove(&point, &around)?;
+    equations.sharpen(&mut proved);
     let mut found = candidate(&rest, &proved, n);
     let unique = everywhere(&root.unique, face, n);
     let same = found.equilibrium.enclosure.iter().zip(&unique).all(|(side, unique)| side.subset_of(*unique));
@@ -126,15 +125,22 @@ pub(super) fn merge(candidates: &mut Vec<Candidate>) {
     *candidates = kept;
 }
 
-/// Asks the full rates, not the divided ones, whether they have a derivative there.
-pub(super) fn look_at_derivative(tape: &Tape, values: &[f64], equilibrium: &mut Equilibrium) {
+/// Asks the full rates, not the divided ones, whether they have a derivative there. `None`, and nothing is known of the
+/// derivative, where `stop` said so.
+pub(super) fn look_at_derivative(
+    tape: &Tape,
+    values: &[f64],
+    equilibrium: &mut Equilibrium,
+    stop: &dyn Fn() -> bool,
+) -> Option<()> {
     let exact: Vec<Interval> = values.iter().map(|&value| Interval::point(value)).collect();
     let mut run = tape.start_gradient(&exact);
-    let domain = run.at(&equilibrium.enclosure);
+    let domain = run.at_unless(&equilibrium.enclosure, stop)?;
     let bounded = (0..tape.outputs()).all(|i| run.gradient(i).is_none_or(|row| row.iter().all(|s| s.is_bounded())));
     if !domain.defined || !bounded {
         equilibrium.derivative = Derivative::Missing;
     } else if !domain.smooth {
         equilibrium.derivative = Derivative::Kink;
     }
+    Some(())
 }

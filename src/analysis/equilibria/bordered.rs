@@ -5,9 +5,11 @@
 //! Keller 1977; Griewank & Reddien 1984; Golubitsky & Schaeffer 1985; from memory).
 
 use super::newton::{Equations, Region};
+use super::sharpen::Residual;
 use crate::expr::tape::Tape;
 use crate::expr::tape::jet::Jet;
 use crate::expr::tape::number::Number;
+use crate::expr::tape::written::Written;
 use crate::num::dense::inverse;
 use crate::num::interval::Interval;
 use crate::num::singular::singular;
@@ -23,6 +25,7 @@ const INFLATIONS: usize = 6;
 pub(super) struct Bordered<'e, 't> {
     equations: &'e mut Equations<'t>,
     tape: &'t Tape,
+    residual: Residual<'t, Written>,
     parameters: Vec<Jet<Interval>>,
     centre: Vec<f64>,
     u: Vec<f64>,
@@ -74,8 +77,9 @@ impl<'e, 't> Bordered<'e, 't> {
         let needed = over.values[row].div(Interval::point(u[row]), &mut true).mag();
         let room = (4.0 * needed).max(f64::MIN_POSITIVE);
         tube.push(Interval::try_new(-room, room).filter(|side| side.is_bounded())?);
+        let residual = Residual::new(tape, parameters);
         let parameters = parameters.iter().map(|&p| Jet::constant(p)).collect();
-        Some(Self { equations, tape, parameters, centre, u, v, inverse, tube })
+        Some(Self { equations, tape, residual, parameters, centre, u, v, inverse, tube })
     }
 
     /// The t that a region spans: vᵀ(x − c).
@@ -167,15 +171,20 @@ impl<'e, 't> Bordered<'e, 't> {
 
     /// Krawczyk's operator: y − C G(y; t) + (I − C M(Y)) (Y − y). `None` where the equations are not defined on Y.
     fn image(&mut self, x: &[f64], mu: f64, t: Interval, region: &[Interval]) -> Option<Vec<Interval>> {
+        if self.equations.is_stopped() {
+            return None;
+        }
         let (n, m) = (self.equations.n, self.equations.n + 1);
         let exact: Region = points(x);
-        let at = self.equations.linear(&exact);
+        // Between two roots F is as small as the square of their distance: too small to be seen beside the rounding of its
+        // terms. What the rounding of the parameters decides is left open.
+        let at = self.residual.at(x)?;
         let over = self.equations.linear(&region[..n]);
-        if !at.domain.defined || !over.domain.defined {
+        if !over.domain.defined {
             return None;
         }
         let scaled = |u: f64| Interval::point(mu) * Interval::point(u);
-        let mut rest: Vec<Interval> = at.values.iter().zip(&self.u).map(|(f, &u)| *f + scaled(u)).collect();
+        let mut rest: Vec<Interval> = at.iter().zip(&self.u).map(|(f, &u)| *f + scaled(u)).collect();
         rest.push(self.along(&exact) - t);
         let defect = self.defect(&matrix(&over.slopes, &points(&self.u), &points(&self.v), Interval::ZERO));
         let y = |i: usize| Interval::point(if i < n { x[i] } else { mu });

@@ -20,7 +20,9 @@ pub fn all(graph: &mut Graph, problem: &Problem<'_>, budget: &Budget<'_>) -> Equ
     let rows = graph.with_zeros(problem.rows, problem.values);
     let problem = &Problem { rows: &rows, ..*problem };
     if let Some(community) = linear::recognise(graph, problem) {
-        return linear::find(&community, problem, budget);
+        let mut found = linear::find(&community, problem, budget);
+        linear::sharpen(graph, &community, problem, &mut found, budget.stop);
+        return found;
     }
     if n > CERTIFIED && !has_few_faces(graph, problem) {
         return starts::find(graph, problem, budget);

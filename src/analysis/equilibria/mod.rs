@@ -1,7 +1,7 @@
 //! Every equilibrium in the search box, each with a proof, and what could not be decided.
 //!
 //! [`find`] is the way in. `faces` walks over who is present, `search` finds all roots on one face, `newton` proves them,
-//! `border` settles zeros, `remains` says what the open boxes probably are, `above` looks beyond the box. Published by
+//! `sharpen` encloses them to the last digit, `border` settles zeros, `remains` says what the open boxes probably are, `above` looks beyond the box. Published by
 //! others and recalled from memory: interval branch and prune (Hansen & Walster 2004; Neumaier 1990).
 
 mod above;
@@ -14,6 +14,7 @@ pub mod linear;
 mod newton;
 mod remains;
 mod search;
+mod sharpen;
 pub mod starts;
 mod witness;
 
@@ -190,7 +191,7 @@ pub fn find(graph: &mut Graph, problem: &Problem<'_>, budget: &Budget<'_>) -> Eq
         _ if n <= 2 => Whole::of(faces, graph, problem, budget),
         workers => at_once(&faces.divide(graph, WALKS_A_WORKER * workers), graph, problem, budget),
     };
-    whole.finish(graph, problem)
+    whole.finish()
 }
 
 /// Walks at once; what they find is put together in the order of the walks. A graph serves one walk at a time and goes
@@ -228,23 +229,33 @@ impl Whole {
     /// Everything on the faces of a walk.
     fn of(mut faces: Faces, graph: &mut Graph, problem: &Problem<'_>, budget: &Budget<'_>) -> Self {
         let mut whole = Self::new();
+        let mut rates = None;
         while let Some(face) = faces.next(graph) {
             if (budget.stop)() {
                 // Whatever the walk had still to see may be anywhere in the box.
                 let whole_box = problem.sides.iter().map(|side| Interval::new(side[0], side[1])).collect();
-                let text = "the budget ended before every face was looked at".to_owned();
-                whole.unresolved.push(Unresolved {
-                    region: whole_box,
-                    probably: Probably::Budget,
-                    text,
-                    witnesses: Vec::new(),
-                });
+                let text = "the budget ended before every face was looked at";
+                whole.unresolved.push(Unresolved::new(whole_box, Probably::Budget, text));
                 break;
             }
             whole.faces += 1;
-            whole.look_at(graph, &face, problem, budget);
+            let found = whole.look_at(graph, &face, problem, budget);
+            if !found.is_empty() {
+                let rates = &*rates.get_or_insert_with(|| Tape::new(graph, problem.rows));
+                whole.keep(found, rates, problem.values);
+            }
         }
         whole
+    }
+
+    /// Takes what was found on a face for equilibria, and says whether the rates have a derivative there.
+    fn keep(&mut self, found: Vec<Candidate>, rates: &Tape, values: &[f64]) {
+        for mut candidate in found {
+            // Never stopped.
+            if border::look_at_derivative(rates, values, &mut candidate.equilibrium, &|| false).is_some() {
+                self.candidates.push(candidate);
+            }
+        }
     }
 
     fn and(mut self, other: Self) -> Self {
@@ -256,7 +267,14 @@ impl Whole {
         self
     }
 
-    fn look_at(&mut self, graph: &mut Graph, face: &Face, problem: &Problem<'_>, budget: &Budget<'_>) {
+    /// The roots on a face that are in the box.
+    fn look_at(
+        &mut self,
+        graph: &mut Graph,
+        face: &Face,
+        problem: &Problem<'_>,
+        budget: &Budget<'_>,
+    ) -> Vec<Candidate> {
         let n = graph.states();
         let tape = Tape::over(graph, &face.rows, &face.variables);
         let side = |&i: &usize| Interval::new(problem.sides[i][0], problem.sides[i][1]);
@@ -275,24 +293,22 @@ impl Whole {
         let remains = if found.open.is_empty() && found.continuum.is_empty() {
             Remains::default()
         } else {
-            remains::look_again(&tape, problem.values, face, n, &found)
+            remains::look_again(&tape, problem.values, face, n, &found, budget.stop)
         };
         self.unresolved.extend(remains.unresolved);
+        let mut candidates = Vec::new();
         for root in found.roots.iter().chain(&remains.roots) {
             match border::settle(graph, face, root, problem) {
-                Some(border::Settled::Root(candidate)) => self.candidates.push(candidate),
+                Some(border::Settled::Root(candidate)) => candidates.push(candidate),
                 Some(border::Settled::Open(unresolved)) => self.unresolved.push(unresolved),
                 None => {}
             }
         }
+        candidates
     }
 
-    fn finish(mut self, graph: &mut Graph, problem: &Problem<'_>) -> Equilibria {
+    fn finish(mut self) -> Equilibria {
         border::merge(&mut self.candidates);
-        let tape = Tape::new(graph, problem.rows);
-        for candidate in &mut self.candidates {
-            border::look_at_derivative(&tape, problem.values, &mut candidate.equilibrium);
-        }
         let unresolved = remains::gathered(self.unresolved);
         let mut list: Vec<Equilibrium> = self.candidates.into_iter().map(|candidate| candidate.equilibrium).collect();
         list.sort_by(order);

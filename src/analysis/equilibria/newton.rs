@@ -3,10 +3,12 @@
 //! The proof is Krawczyk's test with epsilon-inflation around an approximate root (Krawczyk 1969; Rump 1983, 2010; from
 //! memory), the step that cuts boxes is the preconditioned interval Gauss–Seidel step of Hansen & Sengupta (1981).
 
+use super::sharpen::Residual;
 use crate::expr::tape::Tape;
 use crate::expr::tape::gradient::GradientRun;
 use crate::expr::tape::number::Domain;
-use crate::num::dense::inverse;
+use crate::num::dense::{inverse, inverse_unless};
+use crate::num::double::Double;
 use crate::num::interval::Interval;
 
 /// A box of states, one interval a variable.
@@ -19,6 +21,9 @@ const LEASH: f64 = 3.0;
 /// Halvings of the region in which a root may be alone.
 const HALVINGS: usize = 48;
 
+/// A matrix of higher order is not multiplied without asking whether to go on.
+const ASKED_FROM: usize = 16;
+
 /// Rounds of epsilon-inflation before a root is given up.
 const INFLATIONS: usize = 8;
 
@@ -27,8 +32,11 @@ pub(super) struct Equations<'t> {
     pub(super) n: usize,
     numbers: GradientRun<'t, f64>,
     intervals: GradientRun<'t, Interval>,
+    pub(super) residual: Residual<'t, Double>,
     /// Size of each variable, for what counts as nothing beside it.
     pub(super) scale: Vec<f64>,
+    /// Asked on the way: the equations of a large community take long at one point.
+    stop: &'t dyn Fn() -> bool,
 }
 
 /// A root that is proved to exist and to be the only one in `unique`.
@@ -53,6 +61,14 @@ pub(super) struct Linear {
     pub(super) domain: Domain,
 }
 
+impl Linear {
+    /// Nothing known: any value and any slope.
+    fn unknown(n: usize) -> Self {
+        let domain = Domain { defined: false, smooth: false };
+        Self { values: vec![Interval::ENTIRE; n], slopes: vec![Interval::ENTIRE; n * n], domain }
+    }
+}
+
 impl<'t> Equations<'t> {
     pub(super) fn new(tape: &'t Tape, parameters: &[f64], scale: Vec<f64>) -> Self {
         let exact: Vec<Interval> = parameters.iter().map(|&p| Interval::point(p)).collect();
@@ -60,13 +76,24 @@ impl<'t> Equations<'t> {
             n: tape.states(),
             numbers: tape.start_gradient(parameters),
             intervals: tape.start_gradient(&exact),
+            residual: Residual::new(tape, parameters),
             scale,
+            stop: &|| false,
         }
     }
 
-    /// Values and derivatives over a region.
+    /// The same, but nothing is found or proved any more once `stop` says so.
+    pub(super) fn until(self, stop: &'t dyn Fn() -> bool) -> Self {
+        Self { stop, ..self }
+    }
+
+    pub(super) fn is_stopped(&self) -> bool {
+        (self.stop)()
+    }
+
+    /// Values and derivatives over a region; not defined anywhere, as it were, where it was stopped.
     pub(super) fn linear(&mut self, region: &[Interval]) -> Linear {
-        let domain = self.intervals.at(region);
+        let Some(domain) = self.intervals.at_unless(region, self.stop) else { return Linear::unknown(self.n) };
         let n = self.n;
         let values = (0..n).map(|i| *self.intervals.output(i)).collect();
         let mut slopes = Vec::with_capacity(n * n);
@@ -104,7 +131,7 @@ impl<'t> Equations<'t> {
         let mut x = start.to_vec();
         for _ in 0..STEPS {
             let slopes = self.slopes_at(&x);
-            let inverse = inverse(&slopes, n)?;
+            let inverse = inverse_unless(&slopes, n, self.stop)?;
             let mut largest = 0.0f64;
             for i in 0..n {
                 let step: f64 = (0..n).map(|j| inverse[i * n + j] * self.numbers.output(j)).sum();
@@ -140,7 +167,7 @@ impl<'t> Equations<'t> {
 
     /// Proves a root beside an approximate one, and how far it is alone.
     pub(super) fn prove(&mut self, point: &[f64], around: &[Interval]) -> Option<Proved> {
-        let inverse = inverse(&self.slopes_at(point), self.n)?;
+        let inverse = inverse_unless(&self.slopes_at(point), self.n, self.stop)?;
         let exact: Region = point.iter().map(|&x| Interval::point(x)).collect();
         let at_point = self.linear(&exact);
         if !at_point.domain.defined {
@@ -157,11 +184,15 @@ impl<'t> Equations<'t> {
             }
             let image = self.krawczyk(point, &shift, &inverse, &region)?;
             if image.iter().zip(&region).all(|(image, region)| image.interior_of(*region)) {
-                let smooth = self.linear(&image).domain.smooth;
+                let found = self.linear(&image).domain;
+                // The equations are defined on all of the region; not on its part means stopped.
+                if !found.defined {
+                    return None;
+                }
                 let alone = self.alone(point, &inverse, around);
                 let wider = region.iter().zip(&alone).all(|(proved, alone)| proved.subset_of(*alone));
                 let unique = if wider { alone } else { region };
-                return Some(Proved { point: middle(&image, point), enclosure: image, unique, smooth });
+                return Some(Proved { point: middle(&image, point), enclosure: image, unique, smooth: found.smooth });
             }
             for i in 0..self.n {
                 let reach = (image[i] - Interval::point(point[i])).mag();
@@ -189,18 +220,22 @@ impl<'t> Equations<'t> {
     }
 
     /// C v
-    fn preconditioned(&self, inverse: &[f64], values: &[Interval]) -> Vec<Interval> {
+    pub(super) fn preconditioned(&self, inverse: &[f64], values: &[Interval]) -> Vec<Interval> {
         let n = self.n;
         let row =
             |i: usize| (0..n).fold(Interval::ZERO, |sum, j| sum + Interval::point(inverse[i * n + j]) * values[j]);
         (0..n).map(row).collect()
     }
 
-    /// C J
+    /// C J; anything where it was stopped.
     fn product(&self, inverse: &[f64], slopes: &[Interval]) -> Vec<Interval> {
         let n = self.n;
         let mut product = Vec::with_capacity(n * n);
         for i in 0..n {
+            // Asking costs as much as a row of a small matrix.
+            if n > ASKED_FROM && self.is_stopped() {
+                return vec![Interval::ENTIRE; n * n];
+            }
             for j in 0..n {
                 let entry = (0..n)
                     .filter(|&k| inverse[i * n + k] != 0.0)
@@ -212,7 +247,7 @@ impl<'t> Equations<'t> {
     }
 
     /// I − C J
-    fn defect(&self, inverse: &[f64], slopes: &[Interval]) -> Vec<Interval> {
+    pub(super) fn defect(&self, inverse: &[f64], slopes: &[Interval]) -> Vec<Interval> {
         let n = self.n;
         let mut defect = self.product(inverse, slopes);
         for (position, entry) in defect.iter_mut().enumerate() {
@@ -236,6 +271,10 @@ impl<'t> Equations<'t> {
         for _ in 0..HALVINGS {
             let region = spread(point, &radius);
             let linear = self.linear(&region);
+            // What is proved so far stands; it is only not known how far the root is alone.
+            if self.is_stopped() {
+                break;
+            }
             if linear.domain.defined {
                 let defect = self.defect(inverse, &linear.slopes);
                 let dominant = (0..n).all(|i| {

@@ -45,13 +45,15 @@ pub struct Unresolved {
     pub probably: Probably,
     /// The same in a sentence.
     pub text: String,
-    /// Points of a continuum, a few.
+    /// Of a continuum, how many directions lead along it, as far as seen.
+    pub dimension: Option<usize>,
+    /// Points of a continuum, a few: numerical.
     pub witnesses: Vec<Vec<f64>>,
 }
 
 impl Unresolved {
     pub(super) fn new(region: Region, probably: Probably, text: impl Into<String>) -> Self {
-        Self { region, probably, text: text.into(), witnesses: Vec::new() }
+        Self { region, probably, text: text.into(), dimension: None, witnesses: Vec::new() }
     }
 }
 
@@ -67,16 +69,21 @@ pub(super) struct Remains {
 const SHOWN: usize = 3;
 
 /// Looks once more at what a face's search left open.
-pub(super) fn look_again(tape: &Tape, values: &[f64], face: &Face, n: usize, found: &Found) -> Remains {
+pub(super) fn look_again(
+    tape: &Tape,
+    values: &[f64],
+    face: &Face,
+    n: usize,
+    found: &Found,
+    stop: &dyn Fn() -> bool,
+) -> Remains {
     let mut remains = Remains::default();
-    let mut equations = Equations::new(tape, values, found.scale.clone());
+    let mut equations = Equations::new(tape, values, found.scale.clone()).until(stop);
+    let out_of_budget =
+        |boxes: &[Region], text: String| Unresolved::new(everywhere(&hull_of(boxes), face, n), Probably::Budget, text);
     if found.stopped {
-        let hull = hull_of(&found.open);
-        remains.unresolved.push(Unresolved::new(
-            everywhere(&hull, face, n),
-            Probably::Budget,
-            budget_text(found.open.len()),
-        ));
+        let text = format!("the budget ended with {} boxes not looked at", found.open.len());
+        remains.unresolved.push(out_of_budget(&found.open, text));
         return remains;
     }
     if !found.continuum.is_empty() && found.witnesses.is_continuum() {
@@ -84,10 +91,22 @@ pub(super) fn look_again(tape: &Tape, values: &[f64], face: &Face, n: usize, fou
         remains.unresolved.push(continuum(&all, face, n, found));
         return remains;
     }
-    for heap in heaps(found.open.iter().chain(&found.continuum)) {
-        match decide(&mut equations, tape, values, &heap) {
+    let mut left = heaps(found.open.iter().chain(&found.continuum), stop);
+    left.reverse();
+    while let Some(heap) = left.pop() {
+        let decided = decide(&mut equations, tape, values, &heap);
+        if stop() {
+            left.push(heap);
+            let text = "the budget ended before what is degenerate in here was looked at".to_owned();
+            remains.unresolved.push(out_of_budget(&left, text));
+            break;
+        }
+        match decided {
             Heap::Empty => {}
-            Heap::Roots(roots) => remains.roots.extend(roots),
+            Heap::Roots(mut roots) => {
+                roots.iter_mut().for_each(|root| equations.sharpen(root));
+                remains.roots.extend(roots);
+            }
             Heap::DoubleOrTwo => {
                 let text = "none, one double or two equilibria: closer together than numbers can tell".to_owned();
                 remains.unresolved.push(Unresolved::new(everywhere(&heap, face, n), Probably::DoubleRoot, text));
@@ -99,10 +118,6 @@ pub(super) fn look_again(tape: &Tape, values: &[f64], face: &Face, n: usize, fou
         }
     }
     remains
-}
-
-fn budget_text(boxes: usize) -> String {
-    format!("the budget ended with {boxes} boxes not looked at")
 }
 
 fn continuum(boxes: &[Region], face: &Face, n: usize, found: &Found) -> Unresolved {
@@ -118,8 +133,9 @@ fn continuum(boxes: &[Region], face: &Face, n: usize, found: &Found) -> Unresolv
         state
     };
     let witnesses = found.witnesses.seen.iter().take(SHOWN).map(|witness| at(&witness.point)).collect();
-    let text = format!("probably {shape} of equilibria: they are not isolated");
-    Unresolved { witnesses, ..Unresolved::new(everywhere(&hull_of(boxes), face, n), Probably::Continuum, text) }
+    let text = format!("{shape}, as it seems: its points are not isolated");
+    let region = everywhere(&hull_of(boxes), face, n);
+    Unresolved { witnesses, dimension: Some(dimension), ..Unresolved::new(region, Probably::Continuum, text) }
 }
 
 /// Drops a region that lies in another of the same kind: one place may stay open on several faces.
@@ -149,12 +165,13 @@ fn guess(equations: &mut Equations<'_>, heap: &[Interval]) -> (Probably, String)
     }
 }
 
-/// The hulls of boxes that touch each other, or nearly so.
-fn heaps<'b>(boxes: impl Iterator<Item = &'b Region>) -> Vec<Region> {
+/// The hulls of boxes that touch each other, or nearly so; once `stop` says so the boxes are taken as they are.
+fn heaps<'b>(boxes: impl Iterator<Item = &'b Region>, stop: &dyn Fn() -> bool) -> Vec<Region> {
     let mut heaps: Vec<Region> = Vec::new();
     for region in boxes {
         let mut region = region.clone();
-        while let Some(position) = heaps.iter().position(|other| nearly_touch(other, &region)) {
+        let stopped = stop();
+        while !stopped && let Some(position) = heaps.iter().position(|other| nearly_touch(other, &region)) {
             let other = heaps.swap_remove(position);
             region = region.iter().zip(&other).map(|(a, b)| a.hull(*b)).collect();
         }

@@ -22,8 +22,8 @@ const SWEEPS: usize = 3;
 const SMALLEST: f64 = 1e-6;
 /// No side may get this many times wider, relatively, than the one that is cut.
 const LOPSIDED: f64 = 32.0;
-/// A side whose ends differ by this factor spans orders of magnitude. With it, and the place at which such a side is cut,
-/// random webs took fewest boxes of eight pairs tried: 6 % fewer than with 16 and an eighth.
+/// A side whose ends differ by this factor spans orders of magnitude. Cut at a quarter of its upper end, random webs take
+/// 6 % fewer boxes than cut at an eighth, and hardly more or fewer with another factor from 16 up.
 const WIDE_SPAN: f64 = 32.0;
 
 /// What one face holds.
@@ -82,6 +82,7 @@ impl<'t> Search<'t> {
             search.found.boxes += 1;
             search.look_at(region);
         }
+        search.found.roots.iter_mut().for_each(|root| search.equations.sharpen(root));
         search.found.scale = search.equations.scale;
         search.found
     }

@@ -8,6 +8,9 @@ use super::run::{Run, perform};
 use super::{Register, Tape};
 use crate::expr::graph::Operation;
 
+/// Components of gradients between two questions whether to go on: a millisecond's work or so over intervals.
+const COMPONENTS_UNASKED: usize = 50_000;
+
 /// A tape with its parameters set, giving values and gradients.
 #[derive(Clone, Debug)]
 pub struct GradientRun<'t, T> {
@@ -37,12 +40,41 @@ impl<T: Number> GradientRun<'_, T> {
     /// # Panics
     /// If there are not as many values as the tape has states.
     pub fn at(&mut self, state: &[T]) -> Domain {
+        self.begin(state);
         let tape = self.run.tape;
-        let (first, n) = (tape.first_state(), tape.states);
+        self.perform(tape.states..tape.moving.len(), self.run.fixed_domain)
+    }
+
+    /// As [`GradientRun::at`]; `None`, the outputs then meaning nothing, where `stop` says so on the way.
+    ///
+    /// # Panics
+    /// If there are not as many values as the tape has states.
+    pub fn at_unless(&mut self, state: &[T], stop: &dyn Fn() -> bool) -> Option<Domain> {
+        self.begin(state);
+        let tape = self.run.tape;
+        let mut domain = self.run.fixed_domain;
+        let few = (COMPONENTS_UNASKED / tape.states.max(1)).max(1);
+        for from in (tape.states..tape.moving.len()).step_by(few) {
+            if stop() {
+                return None;
+            }
+            domain = self.perform(from..(from + few).min(tape.moving.len()), domain);
+        }
+        Some(domain)
+    }
+
+    fn begin(&mut self, state: &[T]) {
+        let (first, n) = (self.run.tape.first_state(), self.run.tape.states);
         assert_eq!(state.len(), n, "states");
         self.run.registers[first..first + n].clone_from_slice(state);
-        let mut domain = self.run.fixed_domain;
-        for (position, operation) in tape.moving.iter().enumerate().skip(n) {
+    }
+
+    /// Some of the moving operations in their order, and what they and those before them met.
+    fn perform(&mut self, operations: std::ops::Range<usize>, mut domain: Domain) -> Domain {
+        let tape = self.run.tape;
+        let (first, n) = (tape.first_state(), tape.states);
+        for position in operations {
+            let operation = &tape.moving[position];
             let registers = &self.run.registers;
             let states = &registers[first..first + n];
             let value = perform(operation, registers, states, &tape.blocks, &mut domain);

@@ -2,19 +2,21 @@
 //!
 //! The *fixed* part (constants, parameters and what depends on them alone) runs once per set of parameters, the *moving*
 //! part once per state; so a scenario or a draw never recompiles. Operations are in single-assignment form: operation k
-//! writes register k. `number` says what a type must offer, `run` evaluates over f64 and intervals, `gradient` adds forward
-//! gradients, `jet` Taylor coefficients along a curve, `lanes` whole batches of points or of parameter vectors.
+//! writes register k. `number` says what a type must offer, `run` evaluates over f64, intervals and, through `double` and
+//! `written`, numbers of 32 digits, `gradient` adds forward gradients, `jet` Taylor coefficients along a curve, `lanes` whole batches of points or of parameter vectors.
 
 use std::sync::Arc;
 
 use super::graph::{Graph, Matrix, NodeId, Operation};
 
+mod double;
 pub mod gradient;
 pub mod jet;
 pub mod lanes;
 pub mod number;
 pub mod propagate;
 pub mod run;
+pub mod written;
 
 /// Index of a register: of the operation that writes it.
 pub type Register = u32;

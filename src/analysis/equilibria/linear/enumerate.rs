@@ -74,27 +74,29 @@ impl Faces<'_> {
     /// Faces by number: bit k says whether the k-th of those that may be absent is present.
     fn look_at_all(mut self, free: &[usize], faces: std::ops::Range<usize>, budget: &Budget<'_>) -> Self {
         for face in faces {
-            if (budget.stop)() {
+            let absent = |i: usize| free.iter().position(|&f| f == i).is_some_and(|k| face >> k & 1 == 0);
+            let present: Vec<usize> = (0..self.community.species()).filter(|&i| !absent(i)).collect();
+            if (budget.stop)() || self.look_at(&present, budget.stop).is_none() {
                 let region = self.problem.sides.iter().map(|side| Interval::new(side[0], side[1])).collect();
-                let text = "the work was stopped before all ways of who is present were looked at".to_owned();
+                let text = "the work was stopped before all ways of who is present were looked at";
                 self.found.unresolved.push(Unresolved::new(region, Probably::Budget, text));
                 break;
             }
-            let absent = |i: usize| free.iter().position(|&f| f == i).is_some_and(|k| face >> k & 1 == 0);
-            let present: Vec<usize> = (0..self.community.species()).filter(|&i| !absent(i)).collect();
-            self.look_at(&present);
+            self.found.faces += 1;
         }
         self
     }
 
-    fn look_at(&mut self, present: &[usize]) {
-        self.found.faces += 1;
+    /// `None` where it was stopped.
+    fn look_at(&mut self, present: &[usize], stop: &dyn Fn() -> bool) -> Option<()> {
         let (matrix, right) = self.community.among(present);
-        if let Some(enclosure) = solve(&matrix, &right, &|| false) {
-            return self.judge(present, &enclosure);
+        if let Some(enclosure) = solve(&matrix, &right, stop) {
+            self.judge(present, &enclosure);
+        } else {
+            let sides: Vec<[f64; 2]> = present.iter().map(|&i| self.problem.sides[i]).collect();
+            self.note(present, look_at_singular(&matrix, &right, &sides, stop)?);
         }
-        let sides: Vec<[f64; 2]> = present.iter().map(|&i| self.problem.sides[i]).collect();
-        self.note(present, look_at_singular(&matrix, &right, &sides));
+        Some(())
     }
 
     /// The one point at which the rates of those present vanish: is it in the box, with all of them present?
@@ -114,7 +116,7 @@ impl Faces<'_> {
         } else {
             let text = "it cannot be told whether an abundance is 0 here, where another equilibrium lies, or not, which \
                         would make this an equilibrium of its own";
-            self.leave_open(present, enclosure, Probably::DoubleRoot, text.to_owned());
+            self.leave_open(present, enclosure, Probably::DoubleRoot, text.to_owned(), None);
         }
     }
 
@@ -125,24 +127,31 @@ impl Faces<'_> {
             Held::Perhaps { region, dimension: 0 } => {
                 let text =
                     "those present depend on each other so nearly that no point was proved to be the only one here";
-                self.leave_open(present, &region, Probably::DoubleRoot, text.to_owned());
+                self.leave_open(present, &region, Probably::DoubleRoot, text.to_owned(), None);
             }
             Held::Perhaps { region, dimension } => {
                 let what = if dimension == 1 { "a line" } else { "a surface" };
                 let text = format!(
                     "those present do not limit each other independently: {what} of equilibria (dimension {dimension}), or none"
                 );
-                self.leave_open(present, &region, Probably::Continuum, text);
+                self.leave_open(present, &region, Probably::Continuum, text, Some(dimension));
             }
         }
     }
 
-    fn leave_open(&mut self, present: &[usize], among: &[Interval], probably: Probably, text: String) {
+    fn leave_open(
+        &mut self,
+        present: &[usize],
+        among: &[Interval],
+        probably: Probably,
+        text: String,
+        dimension: Option<usize>,
+    ) {
         let mut region = vec![Interval::ZERO; self.community.species()];
         for (&i, &side) in present.iter().zip(among) {
             let [low, high] = self.problem.sides[i];
             region[i] = side.intersect(Interval::new(low, high));
         }
-        self.found.unresolved.push(Unresolved::new(region, probably, text));
+        self.found.unresolved.push(Unresolved { dimension, ..Unresolved::new(region, probably, text) });
     }
 }

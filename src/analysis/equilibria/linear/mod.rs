@@ -3,11 +3,12 @@
 //! Then the equilibria on a face are the solutions of one linear system, and enumeration is exact. `recognise` reads growth
 //! and matrix off the graph, however the rows were written; `enumerate` solves every face while faces are few, `singular`
 //! says what a face holds whose matrix is singular; `assembly` pivots to a community that no absent species invades where
-//! faces are too many. All produce [`Equilibria`], as the search for general rates does.
+//! faces are too many; `sharpen` takes enclosures to the last digit. All produce [`Equilibria`], as the search for general rates does.
 
 mod assembly;
 mod enumerate;
 mod recognise;
+mod sharpen;
 mod singular;
 
 use super::{Budget, Equilibria, Equilibrium, Problem};
@@ -15,6 +16,7 @@ use crate::num::interval::Interval;
 
 pub use assembly::{Assembly, assemble};
 pub use recognise::recognise;
+pub(super) use sharpen::sharpen;
 
 /// Most species that may be absent for every face to be solved: 2^14 linear systems of at most 14 unknowns.
 const MOST_FREE: usize = 14;

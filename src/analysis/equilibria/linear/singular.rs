@@ -25,26 +25,35 @@ pub(super) enum Held {
     Perhaps { region: Vec<Interval>, dimension: usize },
 }
 
-/// Solutions x of A x = b for some A in `matrix` and b in `right`, with positive components in the box.
-pub(super) fn look_at(matrix: &[Interval], right: &[Interval], sides: &[[f64; 2]]) -> Held {
+/// Solutions x of A x = b for some A in `matrix` and b in `right`, with positive components in the box; `None` where `stop`,
+/// asked once a row, says so.
+pub(super) fn look_at(
+    matrix: &[Interval],
+    right: &[Interval],
+    sides: &[[f64; 2]],
+    stop: &dyn Fn() -> bool,
+) -> Option<Held> {
     let n = right.len();
-    let (combinations, rank) = eliminate(matrix, n);
+    let (combinations, rank) = eliminate(matrix, n, stop)?;
     let mut rows = Rows { n, matrix: matrix.to_vec(), right: right.to_vec() };
     for combination in combinations.chunks_exact(n) {
+        if stop() {
+            return None;
+        }
         rows.combine(combination);
     }
     let mut inside: Vec<Interval> = sides.iter().map(|side| Interval::new(side[0].max(0.0), side[1])).collect();
     let mut anywhere: Vec<Interval> = sides.iter().map(|side| Interval::new(side[0].max(0.0), f64::INFINITY)).collect();
-    match (rows.cut(&mut anywhere), rows.cut(&mut inside)) {
+    Some(match (rows.cut(&mut anywhere, stop)?, rows.cut(&mut inside, stop)?) {
         (Left::Nothing, _) => Held::Nothing,
         (_, Left::Nothing) => Held::NothingInTheBox,
         _ => Held::Perhaps { region: inside, dimension: n - rank },
-    }
+    })
 }
 
 /// Combinations of rows by Gauss–Jordan elimination with complete pivoting, as a matrix to multiply with from the left, and
-/// the rank as far as it can be told.
-fn eliminate(matrix: &[Interval], n: usize) -> (Vec<f64>, usize) {
+/// the rank as far as it can be told; `None` where it was stopped.
+fn eliminate(matrix: &[Interval], n: usize, stop: &dyn Fn() -> bool) -> Option<(Vec<f64>, usize)> {
     let [row_units, column_units] = equilibrate(matrix, n);
     let scaled = |(k, entry): (usize, &Interval)| entry.mid() * row_units[k / n] * column_units[k % n];
     let mut a: Vec<f64> = matrix.iter().enumerate().map(scaled).collect();
@@ -56,13 +65,16 @@ fn eliminate(matrix: &[Interval], n: usize) -> (Vec<f64>, usize) {
     let mut columns: Vec<usize> = (0..n).collect();
     let mut largest = 0.0f64;
     for rank in 0..n {
+        if stop() {
+            return None;
+        }
         let place = rows.iter().flat_map(|&i| columns.iter().map(move |&j| (i, j)));
         let best = place.max_by(|&(i, j), &(k, l)| a[i * n + j].abs().total_cmp(&a[k * n + l].abs()));
-        let Some((i, j)) = best else { return (combination, rank) };
+        let Some((i, j)) = best else { return Some((combination, rank)) };
         let pivot = a[i * n + j];
         largest = largest.max(pivot.abs());
         if pivot.abs() <= NOTHING * largest {
-            return (combination, rank);
+            return Some((combination, rank));
         }
         for k in (0..n).filter(|&k| k != i) {
             let factor = a[k * n + j] / pivot;
@@ -74,7 +86,7 @@ fn eliminate(matrix: &[Interval], n: usize) -> (Vec<f64>, usize) {
         rows.retain(|&row| row != i);
         columns.retain(|&column| column != j);
     }
-    (combination, n)
+    Some((combination, n))
 }
 
 /// Equations Σ a_j x_j = b in intervals.
@@ -104,12 +116,16 @@ impl Rows {
         self.right.push(right);
     }
 
-    fn cut(&self, region: &mut [Interval]) -> Left {
+    /// `None` where it was stopped.
+    fn cut(&self, region: &mut [Interval], stop: &dyn Fn() -> bool) -> Option<Left> {
         for _ in 0..ROUNDS {
             let before = region.to_vec();
             for (row, &right) in self.matrix.chunks_exact(self.n).zip(&self.right) {
+                if stop() {
+                    return None;
+                }
                 if cut_by(row, right, region) == Left::Nothing {
-                    return Left::Nothing;
+                    return Some(Left::Nothing);
                 }
             }
             let shrank = |(before, after): (&Interval, &Interval)| {
@@ -119,7 +135,7 @@ impl Rows {
                 break;
             }
         }
-        Left::Something
+        Some(Left::Something)
     }
 }
 

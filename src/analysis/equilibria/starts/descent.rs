@@ -6,7 +6,7 @@
 
 use crate::expr::tape::Tape;
 use crate::expr::tape::gradient::GradientRun;
-use crate::num::dense::inverse;
+use crate::num::dense::inverse_unless;
 
 /// Steps from one starting point.
 const STEPS: usize = 60;
@@ -39,7 +39,7 @@ impl<'t> Descent<'t> {
             if stop() {
                 return None;
             }
-            let inverse = self.inverse_slopes(&x)?;
+            let inverse = self.inverse_slopes(&x, stop)?;
             let step = self.step(&inverse);
             let length = self.length(&step, &x);
             if !length.is_finite() {
@@ -48,18 +48,25 @@ impl<'t> Descent<'t> {
             if length < ARRIVED {
                 return Some(moved(&x, &step, 1.0));
             }
-            x = self.shortened(&x, &step, length, &inverse)?;
+            x = self.shortened(&x, &step, length, &inverse, stop)?;
         }
         None
     }
 
     /// The longest part of the step after which the next would be shorter.
-    fn shortened(&mut self, x: &[f64], step: &[f64], length: f64, inverse: &[f64]) -> Option<Vec<f64>> {
+    fn shortened(
+        &mut self,
+        x: &[f64],
+        step: &[f64],
+        length: f64,
+        inverse: &[f64],
+        stop: &dyn Fn() -> bool,
+    ) -> Option<Vec<f64>> {
         let longest = self.longest(x, step);
         for halving in 0..=HALVINGS {
             let share = longest * f64::from(-halving).exp2();
             let there = moved(x, step, share);
-            self.run.at(&there);
+            self.run.at_unless(&there, stop)?;
             let next = self.step(inverse);
             // NaN fails the comparison.
             if self.length(&next, &there) <= (1.0 - share / 4.0) * length {
@@ -74,16 +81,16 @@ impl<'t> Descent<'t> {
         reaches_zero.fold(1.0, |longest: f64, i| longest.min(TOWARDS_ZERO * x[i] / -step[i]))
     }
 
-    fn inverse_slopes(&mut self, x: &[f64]) -> Option<Vec<f64>> {
+    fn inverse_slopes(&mut self, x: &[f64], stop: &dyn Fn() -> bool) -> Option<Vec<f64>> {
         let n = self.n;
-        self.run.at(x);
+        self.run.at_unless(x, stop)?;
         let mut slopes = vec![0.0; n * n];
         for (i, row) in slopes.chunks_exact_mut(n.max(1)).enumerate() {
             if let Some(gradient) = self.run.gradient(i) {
                 row.copy_from_slice(gradient);
             }
         }
-        inverse(&slopes, n)
+        inverse_unless(&slopes, n, stop)
     }
 
     /// −J⁻¹ f, for the values f where the run last was.

@@ -1,6 +1,6 @@
 //! The hunt on one face: starting points, and what Newton's method makes of them, each root proved on its own.
 
-use super::super::border::{Settled, settle};
+use super::super::border::{Settled, look_at_derivative, settle};
 use super::super::faces::Face;
 use super::super::newton::{Equations, Proved, Region};
 use super::super::{Candidate, Problem};
@@ -21,6 +21,7 @@ const DEPTH: f64 = 1e-7;
 pub(super) struct Effort<'e> {
     /// Starting points drawn.
     pub(super) starts: usize,
+    /// Asked before each starting point and within all that takes long.
     pub(super) stop: &'e dyn Fn() -> bool,
 }
 
@@ -45,15 +46,21 @@ pub(super) fn hunt(
     let tape = Tape::over(graph, &face.rows, &face.variables);
     let Some(region) = narrowed(&tape, face, problem) else { return Bag::default() };
     let scale: Vec<f64> = region.iter().map(|side| side.mag().clamp(f64::MIN_POSITIVE, f64::MAX)).collect();
-    let equations = Equations::new(&tape, problem.values, scale.clone());
+    let equations = Equations::new(&tape, problem.values, scale.clone()).until(effort.stop);
     let descent = Descent::new(&tape, problem.values, &face.divided, &scale);
     let mut hunt = Hunt { equations, descent, region, roots: Vec::new(), starts: 0 };
     hunt.run(face, given, effort);
     let mut bag = Bag { starts: hunt.starts, ..Bag::default() };
     let roots = std::mem::take(&mut hunt.roots);
+    let mut rates = None;
     for root in &roots {
         match settle(graph, face, root, problem) {
-            Some(Settled::Root(candidate)) => bag.roots.push(candidate),
+            Some(Settled::Root(mut candidate)) => {
+                let rates = &*rates.get_or_insert_with(|| Tape::new(graph, problem.rows));
+                let looked_at = look_at_derivative(rates, problem.values, &mut candidate.equilibrium, effort.stop);
+                // A root of which that is not known is left out: the list is not complete anyway.
+                bag.roots.extend(looked_at.map(|()| candidate));
+            }
             Some(Settled::Open(open)) => bag.open.push(open),
             None => {}
         }
@@ -119,9 +126,10 @@ impl Hunt<'_> {
             return;
         }
         let polished = self.equations.approximate(&point, None).unwrap_or(point);
-        if let Some(proved) = self.equations.prove(&polished, &self.region)
+        if let Some(mut proved) = self.equations.prove(&polished, &self.region)
             && !self.roots.iter().any(|root| is_same(root, &proved))
         {
+            self.equations.sharpen(&mut proved);
             self.roots.push(proved);
         }
     }

@@ -194,11 +194,7 @@ impl All<'_> {
         done.into_iter().map(|done| done.into_inner().flatten()).collect()
     }
 
-    fn finish(mut self, sampled: bool) -> Equilibria {
-        let tape = Tape::new(self.graph, self.problem.rows);
-        for candidate in &mut self.found.roots {
-            border::look_at_derivative(&tape, self.problem.values, &mut candidate.equilibrium);
-        }
+    fn finish(self, sampled: bool) -> Equilibria {
         let mut unresolved = self.found.open;
         unresolved.push(not_complete(self.problem, self.found.starts, self.seen.len(), sampled));
         let mut list: Vec<Equilibrium> = self.found.roots.into_iter().map(|root: Candidate| root.equilibrium).collect();

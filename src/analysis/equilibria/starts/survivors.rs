@@ -5,7 +5,7 @@
 
 use super::super::Problem;
 use crate::expr::tape::Tape;
-use crate::num::dense::inverse;
+use crate::num::dense::inverse_unless;
 
 /// Steps along one course.
 const STEPS: usize = 120;
@@ -27,7 +27,7 @@ pub(super) fn course(tape: &Tape, problem: &Problem<'_>, start: &[f64], stop: &d
         if stop() {
             return None;
         }
-        run.at(&x);
+        run.at_unless(&x, stop)?;
         let mut system = vec![0.0; n * n];
         for (i, row) in system.chunks_exact_mut(n).enumerate() {
             if let Some(gradient) = run.gradient(i) {
@@ -39,7 +39,7 @@ pub(super) fn course(tape: &Tape, problem: &Problem<'_>, start: &[f64], stop: &d
         let step = length.unwrap_or(FIRST / fastest);
         length = Some(step * LONGER);
         (0..n).for_each(|i| system[i * n + i] += 1.0 / step);
-        let inverse = inverse(&system, n)?;
+        let inverse = inverse_unless(&system, n, stop)?;
         for (i, row) in inverse.chunks_exact(n).enumerate() {
             let change: f64 = row.iter().enumerate().map(|(j, entry)| entry * run.output(j)).sum();
             let [low, high] = problem.sides[i];
