@@ -2,9 +2,9 @@
 //!
 //! [`interval`] is the number type that proofs are made of; [`round`] gives the directed bounds under it, [`elementary`]
 //! the scalar functions that every number type shares, [`quotient`] the functions f(u)/u that stay smooth at 0; [`solve`]
-//! encloses solutions of linear systems, [`complementarity`] pivots to a community that no absent species invades; [`eigen`] has eigenvalues and their vectors. To add a
-//! function, give its scalar form in [`elementary`], its enclosure in [`interval`], and rows of references to
-//! `tests/data/interval_references.py`.
+//! encloses solutions of linear systems, [`complementarity`] pivots to a community that no absent species invades,
+//! [`eigen`] has eigenvalues and their vectors, [`verified`] what is proved of them. To add a function, give its scalar form
+//! in [`elementary`], its enclosure in [`interval`], and rows of references to `tests/data/interval_references.py`.
 
 pub mod complementarity;
 pub mod dense;
@@ -16,3 +16,4 @@ pub mod random;
 pub mod round;
 pub mod singular;
 pub mod solve;
+pub mod verified;
