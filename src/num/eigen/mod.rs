@@ -18,6 +18,7 @@ use nalgebra::Complex;
 
 pub(crate) use blocks::strongly_connected;
 pub use symmetric::{SymmetricSpectrum, largest_singular, symmetric, symmetric_spectrum};
+pub(crate) use triangular::complex_schur;
 pub use two::Discriminant;
 
 use super::interval::Interval;
@@ -103,9 +104,9 @@ pub fn eigenvalues(entries: &[f64], n: usize) -> Result<Vec<Complex<f64>>, Unsol
     if entries.iter().any(|x| !x.is_finite()) {
         return Err(Unsolved::NotFinite);
     }
-    let mut values = match entries {
-        &[a] => vec![Complex::new(a, 0.0)],
-        &[a, b, c, d] => two::values(&[a, b, c, d]).to_vec(),
+    let mut values = match *entries {
+        [a] => vec![Complex::new(a, 0.0)],
+        [a, b, c, d] => two::values(&[a, b, c, d]).to_vec(),
         _ => by_blocks(entries, n)?,
     };
     if values.iter().any(|z| !z.is_finite()) {

@@ -129,7 +129,7 @@ mod tests {
         check(2f64.powi(1023), -2097, f64::from_bits(1));
         check(1.0, 1024, f64::INFINITY);
         check(1.0, -5000, 0.0);
-        check(-1.5, -1074, f64::from_bits(2) * -1.0);
+        check(-1.5, -1074, -f64::from_bits(2));
         for e in [-1074, -1073, -1022, -1, 0, 1, 1023] {
             assert_eq!(exponent_of(times_power(1.0, e)), Some(e));
         }
