@@ -34,16 +34,13 @@ fn walk(start: usize, seen: &mut [bool], linked: &impl Fn(usize, usize) -> bool,
     let mut stack = vec![(start, 0)];
     while let Some((i, from)) = stack.last_mut() {
         let i = *i;
-        match (*from..seen.len()).find(|&j| !seen[j] && linked(i, j)) {
-            Some(j) => {
-                *from = j + 1;
-                seen[j] = true;
-                stack.push((j, 0));
-            }
-            None => {
-                finished.push(i);
-                stack.pop();
-            }
+        if let Some(j) = (*from..seen.len()).find(|&j| !seen[j] && linked(i, j)) {
+            *from = j + 1;
+            seen[j] = true;
+            stack.push((j, 0));
+        } else {
+            finished.push(i);
+            stack.pop();
         }
     }
 }

@@ -10,6 +10,7 @@ mod blocks;
 mod general;
 mod scale;
 mod symmetric;
+mod three;
 mod triangular;
 mod two;
 mod vectors;
@@ -18,10 +19,11 @@ use nalgebra::Complex;
 
 pub(crate) use blocks::strongly_connected;
 pub use symmetric::{SymmetricSpectrum, largest_singular, symmetric, symmetric_spectrum};
+pub(crate) use triangular::complex_schur;
 pub use two::Discriminant;
 
 use super::interval::Interval;
-use scale::{Scaled, balance, exponent_of, largest, times_power};
+use scale::{Scaled, balance, balance_into, exponent_of, largest, times_power};
 
 /// Why there are no eigenvalues.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -103,9 +105,9 @@ pub fn eigenvalues(entries: &[f64], n: usize) -> Result<Vec<Complex<f64>>, Unsol
     if entries.iter().any(|x| !x.is_finite()) {
         return Err(Unsolved::NotFinite);
     }
-    let mut values = match entries {
-        &[a] => vec![Complex::new(a, 0.0)],
-        &[a, b, c, d] => two::values(&[a, b, c, d]).to_vec(),
+    let mut values = match *entries {
+        [a] => vec![Complex::new(a, 0.0)],
+        [a, b, c, d] => two::values(&[a, b, c, d]).to_vec(),
         _ => by_blocks(entries, n)?,
     };
     if values.iter().any(|z| !z.is_finite()) {
@@ -116,26 +118,53 @@ pub fn eigenvalues(entries: &[f64], n: usize) -> Result<Vec<Complex<f64>>, Unsol
 }
 
 fn by_blocks(entries: &[f64], n: usize) -> Result<Vec<Complex<f64>>, Unsolved> {
+    if let Ok(block) = <&[f64; 9]>::try_from(entries)
+        && irreducible(block)
+    {
+        return of_three(block);
+    }
     let mut values = Vec::with_capacity(n);
     for part in strongly_connected(n, |i, j| entries[i * n + j] != 0.0) {
         let block: Vec<f64> = part.iter().flat_map(|&i| part.iter().map(move |&j| entries[i * n + j])).collect();
         match block[..] {
             [a] => values.push(Complex::new(a, 0.0)),
             [a, b, c, d] => values.extend(two::values(&[a, b, c, d])),
+            [a, b, c, d, e, f, g, h, i] => values.extend(of_three(&[a, b, c, d, e, f, g, h, i])?),
             _ => values.extend(of_block(&block, part.len())?),
         }
     }
     Ok(values)
 }
 
-/// Of a block of order three or more.
+/// A graph of three is strongly connected if every index has an arrow out and one in: with fewer, it or the other two are
+/// cut off.
+fn irreducible(a: &[f64; 9]) -> bool {
+    let linked = |i: usize, j: usize| a[i] != 0.0 || a[j] != 0.0;
+    linked(1, 2) && linked(3, 5) && linked(6, 7) && linked(3, 6) && linked(1, 7) && linked(2, 5)
+}
+
+fn of_three(entries: &[f64; 9]) -> Result<Vec<Complex<f64>>, Unsolved> {
+    let mut near = *entries;
+    balance_into(&mut near, &mut [0; 3]);
+    let exponent = exponent_of(largest(&near)).unwrap_or(0);
+    let near = near.map(|x| times_power(x, -exponent));
+    let values = match three::values(&near) {
+        Some(values) => values.to_vec(),
+        None => general::values(&near, 3)?,
+    };
+    Ok(values.into_iter().map(|z| unscaled(z, exponent)).collect())
+}
+
+/// Of an irreducible block of order three or more.
 fn of_block(entries: &[f64], n: usize) -> Result<Vec<Complex<f64>>, Unsolved> {
     let mut balanced = entries.to_vec();
     balance(&mut balanced, n);
     let scaled = Scaled::new(&balanced);
-    let unscaled =
-        |z: Complex<f64>| Complex::new(times_power(z.re, scaled.exponent), times_power(z.im, scaled.exponent));
-    Ok(general::values(&scaled.entries, n)?.into_iter().map(unscaled).collect())
+    Ok(general::values(&scaled.entries, n)?.into_iter().map(|z| unscaled(z, scaled.exponent)).collect())
+}
+
+fn unscaled(z: Complex<f64>, exponent: i32) -> Complex<f64> {
+    Complex::new(times_power(z.re, exponent), times_power(z.im, exponent))
 }
 
 /// Eigenvalues of a matrix of order `n`, row by row, with right and left vectors.

@@ -67,6 +67,13 @@ const WORTH_IT: f64 = 0.95;
 /// nearly triangular.
 pub(super) fn balance(entries: &mut [f64], n: usize) -> Vec<i32> {
     let mut exponents = vec![0; n];
+    balance_into(entries, &mut exponents);
+    exponents
+}
+
+/// As [`balance`], of as many indices as there are `exponents`, all 0 before.
+pub(super) fn balance_into(entries: &mut [f64], exponents: &mut [i32]) {
+    let n = exponents.len();
     for _ in 0..MOST_SWEEPS {
         let mut changed = false;
         for i in 0..n {
@@ -84,13 +91,15 @@ pub(super) fn balance(entries: &mut [f64], n: usize) -> Vec<i32> {
             break;
         }
     }
-    exponents
 }
 
 /// The power of two by which column i is to be multiplied and row i divided; 0 where that gains nothing.
 fn step_of(entries: &[f64], n: usize, i: usize) -> i32 {
     let column = length((0..n).filter(|&j| j != i).map(|j| entries[j * n + i]));
     let row = length((0..n).filter(|&j| j != i).map(|j| entries[i * n + j]));
+    if row < 2.0 * column && column < 2.0 * row {
+        return 0;
+    }
     let (Some(c), Some(r)) = (exponent_of(column), exponent_of(row)) else { return 0 };
     let mut best = (0, column.hypot(row));
     for step in [(r - c).div_euclid(2), (r - c).div_euclid(2) + 1] {
@@ -129,7 +138,7 @@ mod tests {
         check(2f64.powi(1023), -2097, f64::from_bits(1));
         check(1.0, 1024, f64::INFINITY);
         check(1.0, -5000, 0.0);
-        check(-1.5, -1074, f64::from_bits(2) * -1.0);
+        check(-1.5, -1074, -f64::from_bits(2));
         for e in [-1074, -1073, -1022, -1, 0, 1, 1023] {
             assert_eq!(exponent_of(times_power(1.0, e)), Some(e));
         }

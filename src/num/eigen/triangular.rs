@@ -97,11 +97,12 @@ fn scaled(z: Complex<f64>, exponent: i32) -> Complex<f64> {
     Complex::new(times_power(z.re, exponent), times_power(z.im, exponent))
 }
 
+/// Q and T.
 type Pair = (DMatrix<Complex<f64>>, DMatrix<Complex<f64>>);
 
-/// Q and T of one balanced block; a complex pair stands in neighbouring places, exactly conjugate, the one above the axis
+/// A = Q T Qᴴ with Q unitary and T triangular, of one balanced block of order n ≥ 1 with entries near 1; a complex pair stands in neighbouring places, exactly conjugate, the one above the axis
 /// first.
-fn complex_schur(entries: &[f64], n: usize) -> Result<Pair, Unsolved> {
+pub(crate) fn complex_schur(entries: &[f64], n: usize) -> Result<Pair, Unsolved> {
     let complex = |x: f64| Complex::new(x, 0.0);
     let (mut q, mut t) = match n {
         // As they are: the closed form is better than an iteration.

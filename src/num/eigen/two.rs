@@ -74,7 +74,7 @@ pub(super) fn values_near_one(entries: &[f64; 4]) -> [Complex<f64>; 2] {
     if b == 0.0 || c == 0.0 {
         return [real(a.max(d)), real(a.min(d))];
     }
-    let middle = (a + d) / 2.0;
+    let middle = f64::midpoint(a, d);
     let discriminant = Discriminant::of_scaled(entries).value;
     if discriminant < 0.0 {
         let turn = (-discriminant).sqrt();

@@ -150,7 +150,9 @@ fn unit_length(vector: &mut [Complex<f64>], real: bool) -> f64 {
         }
     }
     let after = length(vector);
-    vector.iter_mut().for_each(|z| *z /= after);
+    for z in vector.iter_mut() {
+        *z /= after;
+    }
     before
 }
 

@@ -9,7 +9,7 @@
 use nalgebra::Complex;
 
 use super::product::{Ball, gamma, inflate, moduli_times, times, underflow};
-use super::{Block, Border, Counts};
+use super::{Block, Border, Counts, small};
 use crate::num::dense::inverse;
 use crate::num::eigen::{balanced, spectrum};
 use crate::num::interval::Interval;
@@ -33,7 +33,7 @@ impl Disc {
         Interval::new(-self.radius, self.radius)
     }
 
-    fn touches(&self, other: &Self) -> bool {
+    pub(super) fn touches(&self, other: &Self) -> bool {
         let between = self.centre - other.centre;
         // Rounding of the distance is far below this.
         let distance = between.re.hypot(between.im) * (1.0 - 8.0 * f64::EPSILON);
@@ -61,6 +61,11 @@ pub(super) fn of(block: &Block) -> Option<Vec<Disc>> {
     if let &[entry] = &block.entries[..] {
         let centre = Complex::new(entry.mid(), 0.0);
         return Some(vec![Disc { centre, radius: entry.radius(), cluster: 0, held: 1 }]);
+    }
+    if let &[a, b, c, d] = &block.entries[..]
+        && let Some(discs) = small::discs_of_two(&[a, b, c, d])
+    {
+        return Some(discs.to_vec());
     }
     let n = block.n;
     let (entries, unit) = balanced(&block.entries, n);
@@ -159,12 +164,12 @@ impl Basis {
         let product = moduli_times(&times(&self.inverse, &residual, n), &weights);
         let bounds: Vec<f64> =
             carried.iter().zip(&product).map(|(x, y)| (x + y + underflow(n * n)) * inflate(8)).collect();
-        self.through_inverse(bounds)
+        self.through_inverse(&bounds)
     }
 
     /// From bounds for R (A V − V D) to bounds for V⁻¹ (A V − V D): x_i ≤ y_i + g_i max y/(1 − max g), g = row sums of
     /// |I − R V|.
-    fn through_inverse(&self, bounds: Vec<f64>) -> Option<Vec<f64>> {
+    fn through_inverse(&self, bounds: &[f64]) -> Option<Vec<f64>> {
         let n = self.n;
         let mut defect = times(&self.inverse, &self.v, n);
         (0..n).for_each(|i| defect[i * n + i] -= 1.0);
@@ -177,11 +182,10 @@ impl Basis {
             .collect();
         let largest = |x: &[f64]| x.iter().fold(0.0f64, |a, &b| a.max(b));
         let rest = 1.0 - largest(&g);
-        // NaN fails the comparison.
-        if !(rest > 0.0 && bounds.iter().all(|x| x.is_finite())) {
+        if rest <= 0.0 || !bounds.iter().chain(&g).all(|x| x.is_finite()) {
             return None;
         }
-        let reach = largest(&bounds) / rest * inflate(8);
+        let reach = largest(bounds) / rest * inflate(8);
         Some(bounds.iter().zip(&g).map(|(y, g)| (y + g * reach) * inflate(8)).collect())
     }
 

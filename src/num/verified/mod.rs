@@ -2,11 +2,14 @@
 //! circle how many lie, and whether the leading ones are real.
 //!
 //! [`half_plane`], [`unit_circle`] and [`leading`] are the ways in. The matrix is divided along entries that are exactly 0;
-//! a block of order one keeps its entry, any other is judged by discs around approximate eigenvalues (`discs`). Nothing here says "critical": a proof that an
+//! a block of order two or three is judged by its characteristic polynomial (`small`), any block by discs around approximate
+//! eigenvalues (`discs`), and what is defective or nearly so by the inertia of a quadratic form (`inertia`). Nothing here says "critical": a proof that an
 //! eigenvalue lies *on* the border cannot come from bounds.
 
 mod discs;
+mod inertia;
 mod product;
+mod small;
 
 use std::ops::Add;
 
@@ -89,8 +92,16 @@ fn counts(matrix: &[Interval], n: usize, border: Border) -> Option<Counts> {
     Some(blocks.iter().map(|block| of_block(block, border)).fold(Counts::default(), Add::add))
 }
 
+/// By the cheapest method that decides all; else what the discs say.
 fn of_block(block: &Block, border: Border) -> Counts {
-    discs::of(block).map_or_else(Counts::default, |discs| discs::count(&discs, border))
+    if let Some(counts) = small::counts(&block.entries, border) {
+        return counts;
+    }
+    let counts = discs::of(block).map_or_else(Counts::default, |discs| discs::count(&discs, border));
+    if counts.below + counts.above == block.n {
+        return counts;
+    }
+    inertia::counts(block, border).unwrap_or(counts)
 }
 
 /// Discs that together hold all eigenvalues of every matrix in `matrix` (row by row, of order `n`), by block and cluster;

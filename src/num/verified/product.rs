@@ -20,6 +20,13 @@ impl Ball {
             radius: entries.iter().map(|entry| entry.radius()).collect(),
         }
     }
+
+    /// All entries times a power of two; `None` where one overflows, or is rounded because it is subnormal.
+    pub(super) fn times_power_of_two(&self, unit: f64) -> Option<Self> {
+        let exact = |x: f64| (x * unit / unit == x && (x * unit).is_finite()).then_some(x * unit);
+        let all = |entries: &[f64]| entries.iter().map(|&x| exact(x)).collect::<Option<Vec<f64>>>();
+        Some(Self { middle: all(&self.middle)?, radius: all(&self.radius)? })
+    }
 }
 
 /// A bound on γ for sums of `terms` products, with room for the rounding of the bound itself.
@@ -55,4 +62,9 @@ pub(super) fn moduli_times(a: &[f64], x: &[f64]) -> Vec<f64> {
     let n = x.len();
     let sum = |row: &[f64]| row.iter().zip(x).map(|(a, x)| a.abs() * x).sum::<f64>() * inflate(n) + underflow(n);
     a.chunks_exact(n).map(sum).collect()
+}
+
+/// Aᵀ.
+pub(super) fn transposed(a: &[f64], n: usize) -> Vec<f64> {
+    (0..n * n).map(|k| a[k % n * n + k / n]).collect()
 }
