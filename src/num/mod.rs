@@ -2,9 +2,10 @@
 //!
 //! [`interval`] is the number type that proofs are made of; [`round`] gives the directed bounds under it, [`elementary`]
 //! the scalar functions that every number type shares, [`quotient`] the functions f(u)/u that stay smooth at 0; [`double`]
-//! carries 32 digits with a rigorous error; [`solve`] encloses solutions of linear systems, [`complementarity`] pivots to a community that no absent species invades; [`eigen`] has eigenvalues and their vectors. To add a
-//! function, give its scalar form in [`elementary`], its enclosure in [`interval`], and rows of references to
-//! `tests/data/interval_references.py`.
+//! carries 32 digits with a rigorous error. [`solve`] encloses solutions of linear systems, [`complementarity`] pivots to a
+//! community that no absent species invades. [`eigen`] has eigenvalues and their vectors, [`lyapunov`] quadratic forms that
+//! fall along linear paths, [`verified`] what is proved of them. To add a function, give its scalar form in [`elementary`],
+//! its enclosure in [`interval`], and rows of references to `tests/data/interval_references.py`.
 
 pub mod complementarity;
 pub mod dense;
@@ -12,8 +13,10 @@ pub mod double;
 pub mod eigen;
 pub mod elementary;
 pub mod interval;
+pub mod lyapunov;
 pub mod quotient;
 pub mod random;
 pub mod round;
 pub mod singular;
 pub mod solve;
+pub mod verified;

@@ -99,10 +99,18 @@ pub fn significant_bits(x: f64) -> u32 {
     53 - (x.to_bits() | 1 << 52).trailing_zeros()
 }
 
-/// Whether the exact product of two finite numbers needs no more than the 53 bits of an f64.
+/// Whether the exact product of two finite numbers is sure to need no more than the 53 bits of an f64.
 #[inline]
 fn product_fits(x: f64, y: f64) -> bool {
-    significant_bits(x) + significant_bits(y) <= 53
+    added_bits(x) + added_bits(y) <= 53
+}
+
+/// The bits that a factor may add to a product: none where it is a power of two, so that what is multiplied by 1 stays
+/// what it is; else [`significant_bits`].
+#[inline]
+fn added_bits(x: f64) -> u32 {
+    let fraction = x.to_bits() & ((1 << 52) - 1);
+    53 - (fraction | 1 << 53).trailing_zeros()
 }
 
 /// Whether a rounded result lies where f64 has its full 53 bits: strictly inside the normal range.

@@ -2,11 +2,28 @@
 //! nonlinear terms say where the linear ones are silent.
 //!
 //! The words here are the contract's. [`Kind`] and [`Linearisation::stable`] speak of the linear part alone;
-//! [`Nonlinear`] answers where an eigenvalue is critical: real part 0, for a map modulus 1.
+//! [`Nonlinear`] answers where an eigenvalue is critical: real part 0, for a map modulus 1. Start at [`Lineariser`].
+//! `jacobian` evaluates, `proof` (on `planar` and `place`) says what holds for every Jacobian between the bounds, `critical`
+//! how much a computed eigenvalue may be off, `classify` makes words of both, `nonlinear` looks at the higher terms.
 
-use super::equilibria::Derivative;
-use crate::num::eigen::{Spectrum, Unsolved};
+mod classify;
+mod critical;
+mod jacobian;
+mod nonlinear;
+mod place;
+mod planar;
+mod proof;
+
+use nalgebra::Complex;
+
+use super::equilibria::{Derivative, Equilibrium};
+use super::subject::Subject;
+use crate::num::eigen::{Spectrum, Unsolved, spectrum};
 use crate::num::interval::Interval;
+use classify::Linear;
+use jacobian::Rows;
+use place::Border;
+use proof::Proof;
 
 /// The type of an equilibrium, by its eigenvalues alone.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord)]
@@ -83,7 +100,8 @@ pub struct Nonlinear {
     pub verdict: Verdict,
     /// The coefficient's name.
     pub test: Test,
-    /// Its value, in the normalisation that the test's module gives.
+    /// Its value, in the normalisation that the test's module gives; 0 where the terms looked at do not have one, and the
+    /// verdict is open.
     pub coefficient: f64,
     /// Whether an enclosure of the coefficient has one sign, and the criticality itself is proved.
     pub proven: bool,
@@ -122,4 +140,104 @@ pub enum Unavailable {
     NoDerivative(Derivative),
     /// The eigenvalues could not be computed.
     Eigenvalues(Unsolved),
+}
+
+/// One scenario's equations, compiled once for all of its equilibria.
+#[derive(Clone, Debug)]
+pub struct Lineariser {
+    rows: Rows,
+    border: Border,
+}
+
+/// The linear part at one equilibrium; for several of one scenario keep a [`Lineariser`].
+pub fn linearise(subject: &mut Subject<'_>, equilibrium: &Equilibrium) -> Result<Linearisation, Unavailable> {
+    Lineariser::new(subject).at(equilibrium)
+}
+
+impl Lineariser {
+    /// Compiles a scenario's equations and their divided forms.
+    pub fn new(subject: &mut Subject<'_>) -> Self {
+        let border = if subject.step().is_some() { Border::Circle } else { Border::Axis };
+        Self { rows: Rows::new(subject), border }
+    }
+
+    /// The linear part at an equilibrium of the scenario.
+    ///
+    /// Everything proved is proved for the exact equilibrium that the enclosure holds, so only where it is proved that
+    /// there is one.
+    ///
+    /// # Panics
+    /// If the equilibrium is not one of as many species.
+    pub fn at(&self, equilibrium: &Equilibrium) -> Result<Linearisation, Unavailable> {
+        let enclosure = self.rows.enclosure(equilibrium).map_err(Unavailable::NoDerivative)?;
+        let middle = equilibrium.proven || equilibrium.derivative != Derivative::Exists;
+        let jacobian = if middle && !enclosure.is_empty() {
+            enclosure.iter().map(|entry| entry.mid()).collect()
+        } else {
+            self.rows.numbers(&equilibrium.state)
+        };
+        let n = equilibrium.state.len();
+        let spectrum = self.ordered(spectrum(&jacobian, n).map_err(Unavailable::Eigenvalues)?);
+        let proof = if equilibrium.proven && !enclosure.is_empty() {
+            Proof::of(&enclosure, n, self.border)
+        } else {
+            Proof::default()
+        };
+        let linear = Linear {
+            numbers: &jacobian,
+            enclosure: if equilibrium.proven { &enclosure } else { &[] },
+            spectrum: &spectrum,
+            proof: &proof,
+            border: self.border,
+        };
+        let class = linear.class();
+        let nonlinear = nonlinear::judge(&nonlinear::Critical {
+            rows: &self.rows,
+            equilibrium,
+            enclosure: &enclosure,
+            spectrum: &spectrum,
+            proof: &proof,
+            class: &class,
+            border: self.border,
+        });
+        let leading = spectrum.values.first();
+        Ok(Linearisation {
+            alternating: self.border == Border::Circle && leading.is_some_and(|z| z.im == 0.0 && z.re < 0.0),
+            kind: class.kind,
+            kind_proven: class.kind_proven,
+            stable: class.stable,
+            stable_proven: class.stable_proven,
+            dimensions: class.dimensions,
+            nonlinear,
+            jacobian,
+            enclosure,
+            spectrum,
+        })
+    }
+
+    /// The contract's order: that of the spectrum, for maps by falling modulus.
+    fn ordered(&self, spectrum: Spectrum) -> Spectrum {
+        match self.border {
+            Border::Axis => spectrum,
+            Border::Circle => spectrum.by_modulus(),
+        }
+    }
+}
+
+impl Linearisation {
+    /// How many species.
+    pub fn order(&self) -> usize {
+        self.spectrum.values.len()
+    }
+
+    /// The leading eigenvalue: of largest real part, for a map of largest modulus; of a pair the one above the real axis.
+    /// `None` only without species.
+    pub fn leading(&self) -> Option<Complex<f64>> {
+        self.spectrum.values.first().copied()
+    }
+
+    /// How the entry of row i, column j lies in [`Linearisation::jacobian`].
+    pub fn entry(&self, i: usize, j: usize) -> f64 {
+        self.jacobian[i * self.order() + j]
+    }
 }
