@@ -3,17 +3,21 @@
 //! [`interval`] is the number type that proofs are made of; [`round`] gives the directed bounds under it, [`elementary`]
 //! the scalar functions that every number type shares, [`quotient`] the functions f(u)/u that stay smooth at 0; [`solve`]
 //! encloses solutions of linear systems, [`complementarity`] pivots to a community that no absent species invades,
-//! [`eigen`] has eigenvalues and their vectors, [`verified`] what is proved of them. To add a function, give its scalar form
-//! in [`elementary`], its enclosure in [`interval`], and rows of references to `tests/data/interval_references.py`.
+//! [`eigen`] has eigenvalues and their vectors, [`verified`] what is proved of them; [`exponential`] is exp(At),
+//! [`transient`] says how large it can get, [`stationary`] what noise leaves. To add a function, give its scalar form in
+//! [`elementary`], its enclosure in [`interval`], and rows of references to `tests/data/interval_references.py`.
 
 pub mod complementarity;
 pub mod dense;
 pub mod eigen;
 pub mod elementary;
+pub mod exponential;
 pub mod interval;
 pub mod quotient;
 pub mod random;
 pub mod round;
 pub mod singular;
 pub mod solve;
+pub mod stationary;
+pub mod transient;
 pub mod verified;
