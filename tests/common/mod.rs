@@ -4,6 +4,7 @@
 
 pub mod cases;
 pub mod families;
+pub mod linear;
 pub mod newton;
 pub mod solve;
 pub mod text;
