@@ -46,6 +46,46 @@ pub fn inverse_unless(entries: &[f64], n: usize, stop: &dyn Fn() -> bool) -> Opt
     a.iter().all(|x| x.is_finite()).then_some(a)
 }
 
+/// A B for two matrices of order `n`.
+///
+/// # Panics
+/// If one of them does not have n² entries.
+#[must_use]
+pub fn product(a: &[f64], b: &[f64], n: usize) -> Vec<f64> {
+    assert!(a.len() == n * n && b.len() == n * n, "entries of two matrices of order {n}");
+    let mut out = vec![0.0; n * n];
+    for (row, out) in a.chunks_exact(n.max(1)).zip(out.chunks_exact_mut(n.max(1))) {
+        for (&factor, other) in row.iter().zip(b.chunks_exact(n)) {
+            if factor != 0.0 {
+                add_multiple(out, factor, other);
+            }
+        }
+    }
+    out
+}
+
+/// Aᵀ for a matrix of order `n`.
+///
+/// # Panics
+/// If there are not n² entries.
+#[must_use]
+pub fn transposed(a: &[f64], n: usize) -> Vec<f64> {
+    assert_eq!(a.len(), n * n, "entries of a matrix of order {n}");
+    (0..n * n).map(|k| a[k % n * n + k / n]).collect()
+}
+
+/// ‖A‖₁, the largest sum of the absolute entries of a column, for a matrix of order `n`.
+#[must_use]
+pub fn norm_one(a: &[f64], n: usize) -> f64 {
+    (0..n).map(|j| a.iter().skip(j).step_by(n).map(|x| x.abs()).sum()).fold(0.0, f64::max)
+}
+
+/// The rows and columns of a matrix of order `n` with these indices, in their order.
+#[must_use]
+pub fn block(a: &[f64], n: usize, indices: &[usize]) -> Vec<f64> {
+    indices.iter().flat_map(|&i| indices.iter().map(move |&j| a[i * n + j])).collect()
+}
+
 /// y + c x in place of y.
 pub fn add_multiple(y: &mut [f64], c: f64, x: &[f64]) {
     for (y, x) in y.iter_mut().zip(x) {
@@ -64,7 +104,18 @@ pub fn swap_rows(entries: &mut [f64], width: usize, i: usize, j: usize) {
 
 #[cfg(test)]
 mod tests {
-    use super::inverse;
+    use super::{block, inverse, norm_one, product, transposed};
+
+    #[test]
+    fn multiplies_turns_and_cuts() {
+        let a = [1.0, 2.0, 0.0, 0.0, -3.0, 1.0, 4.0, 0.0, 5.0];
+        // A², by hand.
+        assert_eq!(product(&a, &a, 3), [1.0, -4.0, 2.0, 4.0, 9.0, 2.0, 24.0, 8.0, 25.0]);
+        assert_eq!(transposed(&a, 3), [1.0, 0.0, 4.0, 2.0, -3.0, 0.0, 0.0, 1.0, 5.0]);
+        assert_eq!(norm_one(&a, 3), 6.0);
+        assert_eq!(block(&a, 3, &[2, 0]), [5.0, 4.0, 0.0, 1.0]);
+        assert_eq!((product(&[], &[], 0), transposed(&[], 0), norm_one(&[], 0)), (vec![], vec![], 0.0));
+    }
 
     #[test]
     fn inverts() {

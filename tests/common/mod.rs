@@ -5,6 +5,7 @@
 pub mod cases;
 pub mod families;
 pub mod linear;
+pub mod measured;
 pub mod newton;
 pub mod solve;
 pub mod text;
