@@ -5,6 +5,7 @@
 pub mod cases;
 pub mod families;
 pub mod newton;
+pub mod references;
 pub mod solve;
 pub mod text;
 pub mod whole;

@@ -1,7 +1,7 @@
 //! Regions from which paths can only go to one stable equilibrium, as far as numbers tell.
 //!
 //! With z the relative deviation from the equilibrium and V = zᵀPz a Lyapunov function of its linear part, a region V ≤ c
-//! is taken in which V was seen to fall at points on shells of every size up to c. A sample, not a proof.
+//! is taken in which V was seen to fall at points in shells of every size up to c. A sample, not a proof.
 
 use crate::analysis::equilibria::Equilibrium;
 use crate::num::dense::inverse;
@@ -10,11 +10,11 @@ use crate::num::random::Source;
 
 use super::face::{Face, Field};
 
-/// Radii of the shells: the first, how each follows, and how many.
+/// Outer radii of the shells: the first, how each follows, and how many.
 const FIRST_SHELL: f64 = 1e-4;
-const WIDER: f64 = 1.5;
-const SHELLS: usize = 28;
-/// Points on each shell, for each coordinate.
+const WIDER: f64 = 1.3;
+const SHELLS: usize = 44;
+/// Points in each shell, for each coordinate.
 const POINTS: usize = 16;
 const MOST_POINTS: usize = 128;
 /// The region ends so far inside the last good shell, since shells are only sampled.
@@ -97,7 +97,7 @@ impl Basin {
         (0..n).map(room).fold(self.level, f64::min)
     }
 
-    /// The level of the last shell before one on which V does not fall everywhere.
+    /// The level of the last shell before one in which V does not fall everywhere.
     fn widest(&self, field: &mut Field<'_>, root: &[f64], motion: Motion) -> Option<f64> {
         let n = self.centre.len();
         let mut source = Source::new(1);
@@ -105,7 +105,9 @@ impl Basin {
         for _ in 0..SHELLS {
             for _ in 0..(POINTS * n).min(MOST_POINTS) {
                 let direction: Vec<f64> = (0..n).map(|_| source.between(-1.0, 1.0)).collect();
-                if self.point(&direction, root, radius).is_some_and(|x| !self.falls(field, &x, motion)) {
+                // Anywhere in the shell: where one side of it is not allowed, the other alone would say nothing.
+                let within = radius * source.between(1.0 / WIDER, 1.0);
+                if self.point(&direction, root, within).is_some_and(|x| !self.falls(field, &x, motion)) {
                     return good;
                 }
             }
