@@ -368,12 +368,12 @@ fn each_lane_is_a_path_of_its_own() {
     let mut moved = [false; WIDTH];
     for _ in 0..400 {
         stepper.step(&mut Logistics);
-        for lane in 0..WIDTH {
+        for (lane, moved) in moved.iter_mut().enumerate() {
             let (x, t) = (0.01 * (1.0 + lane as f64), stepper.times()[lane]);
             let exact = 1.0 / (1.0 + (1.0 / x - 1.0) * (-t).exp());
             assert!((stepper.states()[0][lane] - exact).abs() < 1e-6, "lane {lane} at {t}");
             assert!((stepper.states()[1][lane] - t).abs() < 1e-9 * (1.0 + t), "lane {lane} at {t}");
-            moved[lane] |= t > 2.5;
+            *moved |= t > 2.5;
         }
     }
     assert!(stepper.failed()[7] && !moved[7] && stepper.times()[7] <= 2.0 + 1e-9, "{}", stepper.times()[7]);

@@ -46,7 +46,7 @@ pub fn quantile(freedom: usize, wanted: f64) -> f64 {
 /// ln Γ(k/2), by Γ(x + 1) = x Γ(x) from Γ(1) = 1 or Γ(1/2) = √π; k ≥ 1.
 fn ln_gamma_of_half(k: usize) -> f64 {
     let half_of_ln_pi = 0.5 * elementary::ln(std::f64::consts::PI);
-    let (first, start) = if k % 2 == 0 { (2, 0.0) } else { (1, half_of_ln_pi) };
+    let (first, start) = if k.is_multiple_of(2) { (2, 0.0) } else { (1, half_of_ln_pi) };
     (first..k).step_by(2).fold(start, |sum, j| sum + elementary::ln(j as f64 / 2.0))
 }
 

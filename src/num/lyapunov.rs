@@ -63,7 +63,8 @@ pub fn root(p: &[f64], n: usize) -> Option<Vec<f64>> {
             let rest = p[i * n + j] - dot(&l[i * n..i * n + j], &l[j * n..j * n + j]);
             l[i * n + j] = if i > j { rest / l[j * n + j] } else { rest.sqrt() };
         }
-        if !(l[i * n + i] > 0.0) {
+        // Not a number where the square was negative.
+        if l[i * n + i].is_nan() || l[i * n + i] == 0.0 {
             return None;
         }
     }
@@ -99,7 +100,9 @@ mod tests {
         let mut source = Source::new(5);
         for n in 1..7 {
             let mut a: Vec<f64> = (0..n * n).map(|_| source.between(-1.0, 1.0)).collect();
-            a.iter_mut().for_each(|a| *a /= n as f64);
+            for a in &mut a {
+                *a /= n as f64;
+            }
             let p = of_map(&a, n).unwrap_or_default();
             let image = product(&transposed(&a, n), &product(&p, &a, n), n);
             for k in 0..n * n {

@@ -46,7 +46,7 @@ pub(super) fn starts(model: &Model, middle: &[f64], count: usize) -> Vec<Vec<f64
 /// A direction of length 1: one way and the other by turns on a line, else that of independent normals.
 fn direction(d: usize, k: usize, source: &mut Source) -> Vec<f64> {
     if d == 1 {
-        return vec![if k % 2 == 0 { 1.0 } else { -1.0 }];
+        return vec![if k.is_multiple_of(2) { 1.0 } else { -1.0 }];
     }
     let normals: Vec<f64> = (0..d).map(|_| normal(source)).collect();
     let length = normals.iter().map(|z| z * z).sum::<f64>().sqrt().max(f64::MIN_POSITIVE);

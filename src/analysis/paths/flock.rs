@@ -114,7 +114,9 @@ impl<'f> LaneField<'f> {
         let mut outputs: Vec<&mut [f64]> = out.iter_mut().map(|out| &mut out[..]).collect();
         if !self.lanes.run(&inputs, &mut outputs) {
             for (lane, _) in self.lanes.defined().iter().enumerate().filter(|(_, defined)| !**defined) {
-                outputs.iter_mut().for_each(|out| out[lane] = f64::NAN);
+                for out in &mut outputs {
+                    out[lane] = f64::NAN;
+                }
             }
         }
     }
@@ -163,7 +165,7 @@ pub(super) fn flow(face: &Face, starts: &[Vec<f64>], ends: &Ends<'_>) -> Vec<Fat
                 (0..n).for_each(|i| x[i] = field.x[i][lane]);
                 if let Some(fate) = ends.basin(&x, &mut z).or_else(|| emptied(face, &stepper, &y, lane)) {
                     flock.decide(lane, fate);
-                } else if flock.taken[lane] % LOOK_EVERY == 0
+                } else if flock.taken[lane].is_multiple_of(LOOK_EVERY)
                     && let Some(ring) = ends.ring(face, &y, ON_CYCLE)
                 {
                     flock.decide(lane, Fate::Ring(ring));
@@ -220,7 +222,7 @@ pub(super) fn map(face: &Face, starts: &[Vec<f64>], ends: &Ends<'_>) -> Vec<Fate
                 continue;
             }
             flock.taken[lane] += 1;
-            (0..n).for_each(|i| x[i] = next[i][lane]);
+            x.iter_mut().zip(&next).for_each(|(x, next)| *x = next[lane]);
             if let Some(fate) = judged(face, ends, &mut x, &mut z, flock.taken[lane]) {
                 flock.decide(lane, fate);
             }
@@ -237,14 +239,16 @@ fn judged(face: &Face, ends: &Ends<'_>, x: &mut [f64], z: &mut [f64], taken: u32
         return Some(Fate::Open(Vec::new()));
     }
     let emptied = x.iter().position(|x| *x < 0.0);
-    x.iter_mut().for_each(|x| *x = x.max(0.0));
+    for x in x.iter_mut() {
+        *x = x.max(0.0);
+    }
     if let Some(i) = emptied {
         return Some(Fate::Emptied(i, face.state(x)));
     }
     if let Some(fate) = ends.basin(x, z) {
         return Some(fate);
     }
-    if taken % LOOK_EVERY == 0
+    if taken.is_multiple_of(LOOK_EVERY)
         && let Some(ring) = ends.ring(face, x, ON_CYCLE)
     {
         return Some(Fate::Ring(ring));

@@ -87,7 +87,7 @@ impl Path {
     fn is_full(&mut self, stop: &dyn Fn() -> bool) -> bool {
         if self.times.len() >= MOST_STATES {
             self.ended = Ended::TooManyStates;
-        } else if self.times.len() % ASK_EVERY == 0 && stop() {
+        } else if self.times.len().is_multiple_of(ASK_EVERY) && stop() {
             self.ended = Ended::Asked;
         } else {
             return false;

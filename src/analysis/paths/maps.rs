@@ -108,7 +108,7 @@ impl Orbit<'_> {
             if let Some(index) = within(&basins, &levels, &x, &mut z) {
                 return End::Equilibrium(index);
             }
-            let look = self.len() % LOOK_EVERY == 0;
+            let look = self.len().is_multiple_of(LOOK_EVERY);
             if *left == 0 || n == 0 || (look && (known.stop)()) {
                 return End::Open;
             }
@@ -120,7 +120,9 @@ impl Orbit<'_> {
                 return End::Open;
             }
             let emptied = (0..n).find(|&i| next[i] < 0.0);
-            next.iter_mut().for_each(|x| *x = x.max(0.0));
+            for x in &mut next {
+                *x = x.max(0.0);
+            }
             self.states.extend_from_slice(&next);
             x.copy_from_slice(&next);
             if let Some(coordinate) = emptied {

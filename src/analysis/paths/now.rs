@@ -51,7 +51,7 @@ pub fn from_now(
     } else if !starts.is_empty() {
         let rows = subject.graph.with_zeros(&subject.plan.rows, &subject.plan.values);
         let there = present(&mut subject.graph, &rows, &middle);
-        tally.together(subject, &starts, there, &[]);
+        tally.together(subject, &starts, &there, &[]);
     }
     Some(FromNow {
         shares: tally.shares(starts.len()),
@@ -115,8 +115,8 @@ impl<'k> Tally<'k> {
     }
 
     /// Follows many paths at once that start on one face; those that lose a species go on together without it.
-    fn together(&mut self, subject: &mut Subject<'_>, starts: &[Vec<f64>], present: Vec<bool>, lost: &[SpeciesId]) {
-        let Some(face) = Face::new(subject, &present) else {
+    fn together(&mut self, subject: &mut Subject<'_>, starts: &[Vec<f64>], present: &[bool], lost: &[SpeciesId]) {
+        let Some(face) = Face::new(subject, present) else {
             return starts.iter().for_each(|_| self.count(Destination::NotSettled, lost));
         };
         let motion = if subject.step().is_some() { Motion::Map } else { Motion::Flow };
@@ -139,12 +139,12 @@ impl<'k> Tally<'k> {
         self.left_open(subject, &face, &open, lost);
         for (coordinate, states) in emptied.into_iter().enumerate().filter(|(_, states)| !states.is_empty()) {
             let species = face.present[coordinate];
-            let mut without = present.clone();
+            let mut without = present.to_vec();
             without[species] = false;
             let mut lost = lost.to_vec();
             lost.push(SpeciesId(species));
             lost.sort_unstable();
-            self.together(subject, &states, without, &lost);
+            self.together(subject, &states, &without, &lost);
         }
     }
 

@@ -112,7 +112,7 @@ impl Returns {
             let ratio = late / early.max(f64::MIN_POSITIVE);
             let left = if late <= precision.noise { late } else { late * ratio / (1.0 - ratio) };
             let close = late <= precision.close && left <= precision.close && (late <= precision.noise || ratio < 1.0);
-            (turn.size > SMALLEST && close && turn.dies_steadily([two, one, last])).then(|| Closed {
+            (turn.size > SMALLEST && close && turn.dies_steadily([two, one, last])).then_some(Closed {
                 times: [one.time, last.time],
                 peaks: k,
                 dying: turn.dying,

@@ -125,7 +125,7 @@ fn leg<'f>(face: &'f Face, known: Known<'_>, state: &[f64], steps: &mut usize) -
             leg.end = End::Equilibrium(basin.equilibrium);
             return Some(leg);
         }
-        if *steps == 0 || (*steps % ASK_EVERY == 0 && (known.stop)()) {
+        if *steps == 0 || (steps.is_multiple_of(ASK_EVERY) && (known.stop)()) {
             return Some(leg);
         }
         *steps -= 1;

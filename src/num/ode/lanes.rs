@@ -143,8 +143,7 @@ impl LaneStepper {
                 total[l] += share * share;
             }
         }
-        total.iter_mut().for_each(|total| *total /= self.tolerance.len().max(1) as f64);
-        total
+        total.map(|total| total / self.tolerance.len().max(1) as f64)
     }
 
     fn decide(&mut self, error: &Batch) {
@@ -162,7 +161,8 @@ impl LaneStepper {
             // Not a number where the rates are not defined.
             let next = if error[l].is_finite() { (SAFETY * factor[l]).clamp(0.2, 5.0) } else { 0.2 };
             self.h[l] *= next;
-            self.failed[l] |= !(self.h[l] > RESOLUTION * self.time[l].abs()) || !self.time[l].is_finite();
+            let resolved = self.h[l] > RESOLUTION * self.time[l].abs() && self.time[l].is_finite();
+            self.failed[l] |= !resolved;
         }
         let (first, last) = self.k.split_at_mut(STAGES - 1);
         for i in 0..self.y.len() {

@@ -89,8 +89,8 @@ pub fn attempt(flow: &mut dyn Flow, y: &[f64], h: f64, tolerance: &[Tolerance], 
         match stage {
             0 => {}
             1..=4 => {
-                for i in 0..n {
-                    stages.end[i] = y[i] + weighted(A[stage - 1], &stages.u, i);
+                for (i, (end, y)) in stages.end.iter_mut().zip(y).enumerate() {
+                    *end = y + weighted(A[stage - 1], &stages.u, i);
                 }
             }
             _ => add(&mut stages.end, &stages.u[4]),
