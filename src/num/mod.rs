@@ -2,10 +2,10 @@
 //!
 //! [`interval`] is the number type that proofs are made of; [`round`] gives the directed bounds under it, [`elementary`]
 //! the scalar functions that every number type shares, [`quotient`] the functions f(u)/u that stay smooth at 0; [`solve`]
-//! encloses solutions of linear systems, [`complementarity`] pivots to a community that no absent species invades; [`eigen`] has eigenvalues and their vectors, [`ode`] follows differential
-//! equations, [`lyapunov`] says where they must end. To add a
-//! function, give its scalar form in [`elementary`], its enclosure in [`interval`], and rows of references to
-//! `tests/data/interval_references.py`.
+//! encloses solutions of linear systems, [`complementarity`] pivots to a community that no absent species invades,
+//! [`eigen`] has eigenvalues and their vectors, [`lyapunov`] quadratic forms that fall along linear paths, [`verified`]
+//! what is proved of them; [`ode`] follows differential equations. To add a function, give its scalar form in
+//! [`elementary`], its enclosure in [`interval`], and rows of references to `tests/data/interval_references.py`.
 
 pub mod chi_square;
 pub mod complementarity;
@@ -15,9 +15,11 @@ pub mod elementary;
 pub mod interval;
 pub mod lyapunov;
 pub mod ode;
+pub mod quadratic;
 pub mod quotient;
 pub mod random;
 pub mod rapid;
 pub mod round;
 pub mod singular;
 pub mod solve;
+pub mod verified;

@@ -5,7 +5,8 @@
 
 use crate::analysis::equilibria::Equilibrium;
 use crate::num::dense::inverse;
-use crate::num::lyapunov;
+use crate::num::lyapunov::{lyapunov, stein};
+use crate::num::quadratic;
 use crate::num::random::Source;
 
 use super::face::{Face, Field};
@@ -61,11 +62,18 @@ impl Basin {
             return None;
         }
         (0..n * n).for_each(|k| slopes[k] *= unit[k % n] / unit[k / n]);
+        let one: Vec<f64> = (0..n * n).map(|k| f64::from(u8::from(k / n == k % n))).collect();
         let p = match motion {
-            Motion::Flow => lyapunov::of_flow(&slopes, n)?,
-            Motion::Map => lyapunov::of_map(&slopes, n)?,
+            Motion::Flow => {
+                // Time in the unit of the fastest rate, so that P is near 1.
+                let fastest = slopes.iter().fold(0.0f64, |most, slope| most.max(slope.abs()));
+                slopes.iter_mut().for_each(|slope| *slope /= fastest);
+                lyapunov(&slopes, &one, n)?
+            }
+            Motion::Map => stein(&slopes, &one, n)?,
         };
-        let root = lyapunov::root(&p, n)?;
+        // Positive definite only where the equilibrium is stable (Lyapunov 1892).
+        let root = quadratic::root(&p, n)?;
         let mut basin = Self { equilibrium, centre, unit, inverse: inverse(&p, n)?, p, level: 0.0 };
         basin.level = basin.widest(field, &inverse(&root, n)?, motion)?;
         Some(basin)
@@ -76,7 +84,7 @@ impl Basin {
         for (i, z) in z.iter_mut().enumerate() {
             *z = (x[i] - self.centre[i]) / self.unit[i];
         }
-        lyapunov::value(&self.p, z)
+        quadratic::value(&self.p, z)
     }
 
     /// V up to which a path is in the region.
@@ -127,7 +135,7 @@ impl Basin {
         for (z, centre) in z.iter_mut().zip(&self.centre) {
             *z = if *centre > 0.0 { *z } else { z.abs() };
         }
-        let stretch = radius / lyapunov::value(&self.p, &z).sqrt();
+        let stretch = radius / quadratic::value(&self.p, &z).sqrt();
         let x: Vec<f64> = (0..n).map(|i| self.centre[i] + self.unit[i] * stretch * z[i]).collect();
         x.iter().all(|x| x.is_finite() && *x >= 0.0).then_some(x)
     }

@@ -1,6 +1,28 @@
 //! Eigenvalues and eigenvectors of real matrices, every iteration bounded.
+//!
+//! [`eigenvalues`] and [`spectrum`] are the ways in, [`symmetric`] and [`largest_singular`] for growth at once, and
+//! [`Discriminant`] for the border between node and spiral. A matrix is divided along its zeros (`blocks`), each block scaled
+//! and balanced by powers of two (`scale`), solved in closed form (`two`, `three`) or by an iteration (`general`), and put
+//! together again (`triangular`, `vectors`). All numerical: what is *proved* of a spectrum is said by
+//! [`verified`](super::verified). The library's own calls for eigenvalues may run for ever; the lint settings forbid them.
+
+mod blocks;
+mod general;
+mod scale;
+mod symmetric;
+mod triangular;
+mod two;
+mod vectors;
 
 use nalgebra::Complex;
+
+pub(crate) use blocks::strongly_connected;
+pub use symmetric::{SymmetricSpectrum, largest_singular, symmetric, symmetric_spectrum};
+pub(crate) use triangular::complex_schur;
+pub use two::Discriminant;
+
+use super::interval::Interval;
+use scale::{Scaled, balance, exponent_of, largest, times_power};
 
 /// Why there are no eigenvalues.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -23,10 +45,133 @@ pub struct Spectrum {
 /// Right and left eigenvectors, each of length 1.
 #[derive(Clone, Debug, PartialEq)]
 pub struct Vectors {
-    /// A v = λ v: entry i of the k-th at i n + k.
+    /// A v = λ v: entry i of the k-th at i n + k. The largest entry is real and positive.
     pub right: Vec<Complex<f64>>,
-    /// wᴴ A = λ wᴴ: entry i of the k-th at i n + k.
+    /// wᴴ A = λ wᴴ: entry i of the k-th at i n + k. The largest entry is real and positive.
     pub left: Vec<Complex<f64>>,
-    /// Condition of each eigenvalue, 1/|wᴴ v|; infinite where the two are orthogonal.
+    /// Condition of each eigenvalue, 1/|wᴴ v|; infinite where the two are orthogonal, and huge where rounding alone keeps
+    /// them from it.
     pub condition: Vec<f64>,
 }
+
+impl Spectrum {
+    /// The same in a map's order: by falling modulus, then falling real part, then falling imaginary part.
+    #[must_use]
+    pub fn by_modulus(self) -> Self {
+        let key = |z: &Complex<f64>| (z.re.hypot(z.im), z.re, z.im);
+        self.sorted(|a, b| falling(key(a), key(b)))
+    }
+
+    fn by_real_part(self) -> Self {
+        self.sorted(contract_order)
+    }
+
+    fn sorted(self, compare: impl Fn(&Complex<f64>, &Complex<f64>) -> std::cmp::Ordering) -> Self {
+        let n = self.values.len();
+        let mut order: Vec<usize> = (0..n).collect();
+        order.sort_by(|&a, &b| compare(&self.values[a], &self.values[b]));
+        let columns = |entries: &[Complex<f64>]| (0..n * n).map(|k| entries[k / n * n + order[k % n]]).collect();
+        Self {
+            values: order.iter().map(|&k| self.values[k]).collect(),
+            vectors: self.vectors.as_ref().map(|vectors| Vectors {
+                right: columns(&vectors.right),
+                left: columns(&vectors.left),
+                condition: order.iter().map(|&k| vectors.condition[k]).collect(),
+            }),
+        }
+    }
+}
+
+fn falling(a: (f64, f64, f64), b: (f64, f64, f64)) -> std::cmp::Ordering {
+    b.0.total_cmp(&a.0).then(b.1.total_cmp(&a.1)).then(b.2.total_cmp(&a.2))
+}
+
+/// By falling real part, then falling imaginary part.
+fn contract_order(a: &Complex<f64>, b: &Complex<f64>) -> std::cmp::Ordering {
+    falling((a.re, a.im, 0.0), (b.re, b.im, 0.0))
+}
+
+/// Eigenvalues of a matrix of order `n`, row by row; in its unit, in the order of [`Spectrum::values`].
+///
+/// Those of a block triangular matrix (in any order of its indices) are those of the blocks, so a row or column with
+/// nothing off the diagonal gives its entry exactly. Each is otherwise within about n ulp of the *balanced* block's size
+/// times its condition; double ones that are not exactly so in closed form come out about 1e-8 of that apart.
+///
+/// # Panics
+/// If there are not n² entries.
+pub fn eigenvalues(entries: &[f64], n: usize) -> Result<Vec<Complex<f64>>, Unsolved> {
+    assert_eq!(entries.len(), n * n, "entries of a matrix of order {n}");
+    if entries.iter().any(|x| !x.is_finite()) {
+        return Err(Unsolved::NotFinite);
+    }
+    let mut values = match *entries {
+        [a] => vec![Complex::new(a, 0.0)],
+        [a, b, c, d] => two::values(&[a, b, c, d]).to_vec(),
+        _ => by_blocks(entries, n)?,
+    };
+    if values.iter().any(|z| !z.is_finite()) {
+        return Err(Unsolved::NotFinite);
+    }
+    values.sort_by(contract_order);
+    Ok(values)
+}
+
+fn by_blocks(entries: &[f64], n: usize) -> Result<Vec<Complex<f64>>, Unsolved> {
+    let mut values = Vec::with_capacity(n);
+    for part in strongly_connected(n, |i, j| entries[i * n + j] != 0.0) {
+        let block: Vec<f64> = part.iter().flat_map(|&i| part.iter().map(move |&j| entries[i * n + j])).collect();
+        match block[..] {
+            [a] => values.push(Complex::new(a, 0.0)),
+            [a, b, c, d] => values.extend(two::values(&[a, b, c, d])),
+            _ => values.extend(of_block(&block, part.len())?),
+        }
+    }
+    Ok(values)
+}
+
+/// Of a block of order three or more.
+fn of_block(entries: &[f64], n: usize) -> Result<Vec<Complex<f64>>, Unsolved> {
+    let mut balanced = entries.to_vec();
+    balance(&mut balanced, n);
+    let scaled = Scaled::new(&balanced);
+    let unscaled =
+        |z: Complex<f64>| Complex::new(times_power(z.re, scaled.exponent), times_power(z.im, scaled.exponent));
+    Ok(general::values(&scaled.entries, n)?.into_iter().map(unscaled).collect())
+}
+
+/// Eigenvalues of a matrix of order `n`, row by row, with right and left vectors.
+///
+/// Values as [`eigenvalues`] gives them, up to rounding.
+///
+/// # Panics
+/// If there are not n² entries.
+pub fn spectrum(entries: &[f64], n: usize) -> Result<Spectrum, Unsolved> {
+    assert_eq!(entries.len(), n * n, "entries of a matrix of order {n}");
+    if entries.iter().any(|x| !x.is_finite()) {
+        return Err(Unsolved::NotFinite);
+    }
+    let form = triangular::Triangular::new(entries, n)?;
+    if form.values.iter().any(|z| !z.is_finite()) {
+        return Err(Unsolved::NotFinite);
+    }
+    let vectors = vectors::vectors(&form);
+    Ok(Spectrum { values: form.values, vectors: Some(vectors) }.by_real_part())
+}
+
+/// A matrix between bounds that is similar to the given one divided by the power of two beside it: balanced, with entries
+/// near 1. Bounds stay bounds, and may come out unbounded.
+pub(crate) fn balanced(entries: &[Interval], n: usize) -> (Vec<Interval>, f64) {
+    let mut sizes: Vec<f64> = entries.iter().map(|entry| entry.mag()).collect();
+    let exponents = balance(&mut sizes, n);
+    let exponent = exponent_of(largest(&sizes)).unwrap_or(0).clamp(-1022, 1022);
+    let moved = |(place, &entry): (usize, &Interval)| {
+        // In thirds, because the whole power may be no f64; beyond 2^±3000 an entry that is not 0 is out of range anyway.
+        let power = (exponents[place % n] - exponents[place / n] - exponent).clamp(-3000, 3000);
+        let thirds = [power / 3, power / 3, power - 2 * (power / 3)];
+        thirds.iter().fold(entry, |entry, &third| entry * Interval::point(times_power(1.0, third)))
+    };
+    (entries.iter().enumerate().map(moved).collect(), times_power(1.0, exponent))
+}
+
+#[cfg(test)]
+mod tests;
