@@ -4,9 +4,10 @@
 //! the scalar functions that every number type shares, [`quotient`] the functions f(u)/u that stay smooth at 0; [`double`]
 //! carries 32 digits with a rigorous error. [`solve`] encloses solutions of linear systems, [`complementarity`] pivots to a
 //! community that no absent species invades. [`eigen`] has eigenvalues and their vectors, [`lyapunov`] quadratic forms that
-//! fall along linear paths, [`verified`] what is proved of them. To add a function, give its scalar form in [`elementary`],
+//! fall along linear paths, [`verified`] what is proved of them, [`ode`] follows paths. To add a function, give its scalar form in [`elementary`],
 //! its enclosure in [`interval`], and rows of references to `tests/data/interval_references.py`.
 
+pub mod chi_square;
 pub mod complementarity;
 pub mod dense;
 pub mod double;
@@ -15,8 +16,11 @@ pub mod elementary;
 pub mod exponential;
 pub mod interval;
 pub mod lyapunov;
+pub mod ode;
+pub mod quadratic;
 pub mod quotient;
 pub mod random;
+pub mod rapid;
 pub mod round;
 pub mod singular;
 pub mod solve;

@@ -7,6 +7,7 @@ pub mod families;
 pub mod linear;
 pub mod measured;
 pub mod newton;
+pub mod references;
 pub mod solve;
 pub mod text;
 pub mod whole;

@@ -1,6 +1,31 @@
 //! Where paths go: what an unstable state gives way to, and where today's stocks lead. Numerical results, never proofs.
+//!
+//! [`settles`] and [`from_now`] are the ways in, [`follow`] records a path for drawing. `face` has the equations in the
+//! coordinates in which they are followed, `walk` takes steps until someone is lost, `trail` keeps them; `settle` and
+//! `maps` go on until it is clear where a path ends: in a `basin`, or on a turn that `returns`, which `cycle` measures.
+//! `cloud` draws starts from the survey, `flock` follows them all at once.
 
+mod basin;
+mod beside;
+mod cloud;
+mod cycle;
+mod face;
+mod flock;
+mod follow;
+mod maps;
+mod now;
+mod returns;
+mod settle;
+mod trail;
+mod walk;
+
+use crate::analysis::subject::Subject;
 use crate::model::SpeciesId;
+use settle::{Ending, Known};
+
+pub use beside::{is_unstable_coexistence, settles};
+pub use follow::{Ended, Path, follow};
+pub use now::from_now;
 
 /// Where a path ends up.
 #[derive(Clone, Debug, PartialEq)]
@@ -42,4 +67,12 @@ pub struct FromNow {
     pub shares: Vec<(Destination, f64)>,
     /// How many starts the shares rest on.
     pub starts: usize,
+}
+
+/// Follows the path from a state of all species to its end.
+fn go(subject: &mut Subject<'_>, known: Known<'_>, start: &[f64]) -> Ending {
+    match subject.step() {
+        None => settle::settle(subject, known, start),
+        Some(step) => maps::settle(subject, known, start, step),
+    }
 }

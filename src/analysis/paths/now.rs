@@ -1,0 +1,183 @@
+//! Where today's stocks lead: the path from the survey's values, and the shares of a cloud of starts around them.
+
+use crate::analysis::equilibria::Equilibrium;
+use crate::analysis::linearise::Linearisation;
+use crate::analysis::subject::Subject;
+use crate::model::SpeciesId;
+
+use super::basin::{Motion, basins};
+use super::cycle::Ring;
+use super::face::Face;
+use super::flock::{self, Ends, Fate};
+use super::settle::{Ending, Known, present};
+use super::{Cycle, Destination, FromNow, cloud, go};
+
+/// Starts in the cloud: as many as speed allows, fewer where a step costs more.
+const STARTS: usize = 256;
+const STARTS_OF_MANY: usize = 64;
+const STARTS_IF_STIFF: usize = 32;
+/// More species than this are many.
+const MANY: usize = 6;
+/// Paths that the batch leaves open and that are followed one by one, to find what cycle they are on.
+const FOLLOWED: usize = 4;
+/// So close to a cycle, as a share of its extent, squared, a path that was left open counts as being on it.
+const BESIDE_CYCLE: f64 = 0.01;
+
+/// Where today's stocks lead; `None` unless the survey has a value for every species.
+///
+/// The shares are of starts spread over the survey's 95 % region, see `cloud`. A start counts for an equilibrium once it is
+/// in a region from which no path was seen to leave, for a cycle once it has come close to one that some path was seen to
+/// settle on. Numerical; the number of steps is bounded, and `stop` is asked now and then.
+pub fn from_now(
+    subject: &mut Subject<'_>,
+    list: &[Equilibrium],
+    linear: &[Option<&Linearisation>],
+    stop: &dyn Fn() -> bool,
+) -> Option<FromNow> {
+    let known = Known { list, linear, stop };
+    let middle = cloud::middle(subject.model)?;
+    let ending = go(subject, known, &middle);
+    let count = match subject.species() {
+        _ if ending.stiff => STARTS_IF_STIFF,
+        n if n > MANY => STARTS_OF_MANY,
+        _ => STARTS,
+    };
+    let starts = cloud::starts(subject.model, &middle, count);
+    let mut tally = Tally::new(known, &ending);
+    if ending.stiff {
+        for start in &starts {
+            tally.follow(subject, start, &[]);
+        }
+    } else if !starts.is_empty() {
+        let rows = subject.graph.with_zeros(&subject.plan.rows, &subject.plan.values);
+        let there = present(&mut subject.graph, &rows, &middle);
+        tally.together(subject, &starts, &there, &[]);
+    }
+    Some(FromNow {
+        shares: tally.shares(starts.len()),
+        starts: starts.len(),
+        reaches: ending.destination,
+        time: ending.time,
+        lowest: ending.lowest,
+    })
+}
+
+/// How many starts went where.
+struct Tally<'k> {
+    known: Known<'k>,
+    counts: Vec<(Destination, usize)>,
+    rings: Vec<Ring>,
+    /// What all cycles are counted as.
+    cycle: Option<Cycle>,
+}
+
+impl<'k> Tally<'k> {
+    fn new(known: Known<'k>, first: &Ending) -> Self {
+        let mut tally = Self { known, counts: Vec::new(), rings: Vec::new(), cycle: None };
+        tally.learn(first);
+        tally
+    }
+
+    /// Remembers the cycle that a path ended on.
+    fn learn(&mut self, ending: &Ending) {
+        self.rings.extend(ending.ring.clone());
+        if let (None, Destination::Cycle(cycle)) = (&self.cycle, &ending.destination) {
+            self.cycle = Some(cycle.clone());
+        }
+    }
+
+    fn add(&mut self, destination: Destination) {
+        let destination = match (destination, &self.cycle) {
+            (Destination::Cycle(_), Some(cycle)) => Destination::Cycle(cycle.clone()),
+            (other, _) => other,
+        };
+        match self.counts.iter_mut().find(|(known, _)| *known == destination) {
+            Some((_, count)) => *count += 1,
+            None => self.counts.push((destination, 1)),
+        }
+    }
+
+    /// Counts a path for a destination, or for the loss of those that were lost before.
+    fn count(&mut self, destination: Destination, lost: &[SpeciesId]) {
+        let mut all = lost.to_vec();
+        if let Destination::Loss(more) = &destination {
+            all.extend_from_slice(more);
+            all.sort_unstable();
+        }
+        self.add(if all.is_empty() { destination } else { Destination::Loss(all) });
+    }
+
+    /// Follows one path to its end.
+    fn follow(&mut self, subject: &mut Subject<'_>, start: &[f64], lost: &[SpeciesId]) {
+        let ending = go(subject, self.known, start);
+        self.learn(&ending);
+        self.count(ending.destination, lost);
+    }
+
+    /// Follows many paths at once that start on one face; those that lose a species go on together without it.
+    fn together(&mut self, subject: &mut Subject<'_>, starts: &[Vec<f64>], present: &[bool], lost: &[SpeciesId]) {
+        let Some(face) = Face::new(subject, present) else {
+            return starts.iter().for_each(|_| self.count(Destination::NotSettled, lost));
+        };
+        let motion = if subject.step().is_some() { Motion::Map } else { Motion::Flow };
+        let basins = basins(&face, self.known.list, motion);
+        let ends = Ends { basins: &basins, rings: &self.rings, stop: self.known.stop };
+        let fates = match motion {
+            Motion::Flow => flock::flow(&face, starts, &ends),
+            Motion::Map => flock::map(&face, starts, &ends),
+        };
+        let mut emptied: Vec<Vec<Vec<f64>>> = vec![Vec::new(); face.len()];
+        let mut open = Vec::new();
+        for (start, fate) in starts.iter().zip(fates) {
+            match fate {
+                Fate::Equilibrium(index) => self.count(Destination::Equilibrium(index), lost),
+                Fate::Ring(_) => self.count_cycle(lost),
+                Fate::Emptied(coordinate, state) => emptied[coordinate].push(state),
+                Fate::Open(y) => open.push((start, y)),
+            }
+        }
+        self.left_open(subject, &face, &open, lost);
+        for (coordinate, states) in emptied.into_iter().enumerate().filter(|(_, states)| !states.is_empty()) {
+            let species = face.present[coordinate];
+            let mut without = present.to_vec();
+            without[species] = false;
+            let mut lost = lost.to_vec();
+            lost.push(SpeciesId(species));
+            lost.sort_unstable();
+            self.together(subject, &states, &without, &lost);
+        }
+    }
+
+    /// Follows a few of those left open to their ends; others that stand close to what is found there count with them.
+    fn left_open(
+        &mut self,
+        subject: &mut Subject<'_>,
+        face: &Face,
+        open: &[(&Vec<f64>, Vec<f64>)],
+        lost: &[SpeciesId],
+    ) {
+        let mut followed = 0;
+        for (start, y) in open {
+            let ends = Ends { basins: &[], rings: &self.rings, stop: self.known.stop };
+            if !y.is_empty() && ends.ring(face, y, BESIDE_CYCLE).is_some() {
+                self.count_cycle(lost);
+            } else if followed < FOLLOWED && !(self.known.stop)() {
+                followed += 1;
+                self.follow(subject, start, lost);
+            } else {
+                self.count(Destination::NotSettled, lost);
+            }
+        }
+    }
+
+    fn count_cycle(&mut self, lost: &[SpeciesId]) {
+        let destination = self.cycle.clone().map_or(Destination::NotSettled, Destination::Cycle);
+        self.count(destination, lost);
+    }
+
+    /// By falling share.
+    fn shares(mut self, starts: usize) -> Vec<(Destination, f64)> {
+        self.counts.sort_by_key(|(_, count)| std::cmp::Reverse(*count));
+        self.counts.into_iter().map(|(destination, count)| (destination, count as f64 / starts as f64)).collect()
+    }
+}
