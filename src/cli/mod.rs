@@ -17,6 +17,7 @@ mod arguments;
 mod check;
 mod choice;
 mod model;
+mod solve;
 mod table;
 
 /// How a run ended; the numbers are part of the contract.
