@@ -3,7 +3,7 @@
 use crate::analysis::equilibria::{Derivative, Equilibria, Probably};
 
 /// What every table ends with.
-pub(super) const CAUTION: &str = "These are local results about a model, no better than its equations and its \
+pub(in crate::report) const CAUTION: &str = "These are local results about a model, no better than its equations and its \
      figures. Limits on catch, bag or control are set by the responsible authority, under local law and in licensed \
      practice.";
 
@@ -44,7 +44,7 @@ pub(super) fn why(derivative: Derivative) -> Option<&'static str> {
 }
 
 /// What the search of a scenario came to, and whether that is a proof.
-pub(super) fn verdict(equilibria: &Equilibria) -> (bool, String) {
+pub(in crate::report) fn verdict(equilibria: &Equilibria) -> (bool, String) {
     let count = equilibria.list.len();
     let listed = match count {
         0 => "No equilibrium is in the search box".to_owned(),
