@@ -57,8 +57,9 @@ impl Frame {
     /// Column and row of the cell that holds a point; `None` outside the window.
     pub fn cell(&self, point: [f64; 2]) -> Option<[usize; 2]> {
         let [column, row] = self.place(point);
+        let index = |place: f64, count: usize| nearest(place, count - 1);
         (self.window.holds(point) && column.is_finite() && row.is_finite())
-            .then(|| [(column.round() as usize).min(self.columns - 1), (row.round() as usize).min(self.rows - 1)])
+            .then(|| [index(column, self.columns), index(row, self.rows)])
     }
 
     /// A velocity as the eye sees it, in widths of a column.
@@ -75,6 +76,12 @@ impl Frame {
         let x = across * (right - left) / (self.columns - 1) as f64;
         [x, up * (high - low) / (CELL_ASPECT * (self.rows - 1) as f64)]
     }
+}
+
+/// The whole number from 0 to `most` that is nearest; 0 for what is no number.
+#[expect(clippy::cast_sign_loss, reason = "held above 0 first")]
+pub fn nearest(x: f64, most: usize) -> usize {
+    (x.round().max(0.0) as usize).min(most)
 }
 
 /// The ends are met exactly, whatever the rounding in between.

@@ -15,7 +15,7 @@ mod straight;
 mod window;
 
 pub use flow::{Flow, Motion};
-pub use frame::{Frame, Octant, Window};
+pub use frame::{Frame, Octant, Window, nearest};
 pub use portrait::{Portrait, portrait};
 pub use profile::{Profile, profile};
 pub use slice::{Held, Slice};

@@ -4,7 +4,7 @@
 
 use super::signs::{Growth, Mark, flow, spacing};
 use super::{Picture, Style, View};
-use crate::analysis::field::{Frame, Octant, Portrait, Profile, Straight};
+use crate::analysis::field::{Frame, Octant, Portrait, Profile, Straight, nearest};
 
 /// A straight path is drawn over this share of the frame's smaller side to either side, in widths of a column.
 const SHARE: f64 = 0.15;
@@ -70,8 +70,8 @@ pub fn draw(view: &View<'_>, picture: &Picture, style: Style) -> Canvas {
 fn plane(canvas: &mut Canvas, view: &View<'_>, portrait: &Portrait) {
     let frame = &portrait.frame;
     zero_growth(canvas, portrait);
-    for point in portrait.divides.iter().flatten() {
-        if let Some(cell) = frame.cell(*point) {
+    for points in &portrait.divides {
+        for cell in course(points.iter().filter_map(|&point| frame.cell(point))) {
             canvas.put(cell, Mark::Divide);
         }
     }
@@ -143,16 +143,29 @@ fn straight(canvas: &mut Canvas, frame: &Frame, middle: [f64; 2], line: &Straigh
 /// The cells along one half of a straight path, from the equilibrium outwards, without its own.
 fn half(frame: &Frame, middle: [f64; 2], outwards: [f64; 2], reach: f64) -> Vec<[usize; 2]> {
     let [x, y] = frame.unseen(outwards);
-    let own = frame.cell(middle);
-    let mut cells: Vec<[usize; 2]> = Vec::new();
-    for step in 0..=(2.0 * reach) as usize {
-        let far = step as f64 / 2.0;
-        match frame.cell([middle[0] + far * x, middle[1] + far * y]) {
-            Some(cell) if Some(cell) != own && cells.last() != Some(&cell) => cells.push(cell),
-            _ => {}
-        }
-    }
+    let far = (0..=nearest(2.0 * reach, frame.columns)).map(|step| step as f64 / 2.0);
+    let mut cells = course(far.filter_map(|far| frame.cell([middle[0] + far * x, middle[1] + far * y])));
+    cells.retain(|&cell| Some(cell) != frame.cell(middle));
     cells
+}
+
+/// The cells that a line runs through, one to a step: where it goes around a corner by way of a cell between two that
+/// touch at their corners, that cell is left out.
+fn course(cells: impl Iterator<Item = [usize; 2]>) -> Vec<[usize; 2]> {
+    let touch = |a: [usize; 2], b: [usize; 2]| a[0].abs_diff(b[0]) <= 1 && a[1].abs_diff(b[1]) <= 1;
+    let mut course: Vec<[usize; 2]> = Vec::new();
+    for cell in cells {
+        if course.last() == Some(&cell) {
+            continue;
+        }
+        if let [.., before, _] = course[..]
+            && touch(before, cell)
+        {
+            course.pop();
+        }
+        course.push(cell);
+    }
+    course
 }
 
 /// The rate of a single species, and the level of 0.

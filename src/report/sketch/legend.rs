@@ -3,13 +3,16 @@
 use super::canvas::Canvas;
 use super::signs::{Growth, Mark, flow, listed};
 use super::{Picture, Style, View};
-use crate::analysis::field::Held;
+use crate::analysis::equilibria::Equilibria;
+use crate::analysis::field::{Held, Octant};
 use crate::analysis::linearise::Unavailable;
 use crate::model::{Model, TimeKind};
-use crate::report::table::{Page, human, verdict};
+use crate::report::table::{Page, human};
 
 /// Equilibria that are listed one a line; communities have hundreds.
 const MOST_LISTED: usize = 24;
+/// Species whose level is given, present and absent each.
+const MOST_HELD: usize = 6;
 /// Where the meanings begin.
 const INDENT: usize = 6;
 
@@ -38,6 +41,7 @@ fn signs(view: &View<'_>, picture: &Picture, canvas: &Canvas, style: Style) -> V
         if let Some(mark) = mark {
             let sign = match mark {
                 Mark::Flow(octant, _) => flow(octant, style).to_owned(),
+                Mark::Straight(octant, _) => straight_in_words(octant, style),
                 mark => mark.glyph(style).to_string(),
             };
             signs.push((sign, meaning));
@@ -54,13 +58,38 @@ fn signs(view: &View<'_>, picture: &Picture, canvas: &Canvas, style: Style) -> V
     add(has(&|mark| mark == Mark::Growth(Growth::Across)), still(x.clone()));
     add(has(&|mark| mark == Mark::Growth(Growth::Upwards)), still(y.clone()));
     add(has(&|mark| mark == Mark::Growth(Growth::Both)), still(format!("{x} and of {y}")));
-    let straight = "straight path, as the linear part has it: paths beside it run along or away from it";
+    let straight = "straight path of the linear part, into or out of its equilibrium";
     add(has(&|mark| matches!(mark, Mark::Straight(_, true))), straight.to_owned());
-    let divide = "divides the paths: they go elsewhere from either side of it";
+    let divide = "leads into a saddle; the paths on its two sides part there";
     add(has(&|mark| mark == Mark::Divide), divide.to_owned());
     let today = view.now().map_or(String::new(), |now| at(view, now));
-    add(has(&|mark| mark == Mark::Now), format!("today's stocks: {today}"));
+    add(
+        has(&|mark| mark == Mark::Now),
+        format!("today's stocks: {today}{}", if stays(view) { "" } else { "; other species are not as held here" }),
+    );
     signs
+}
+
+/// Whether the stocks of all species that are held are known to be as they are held.
+fn stays(view: &View<'_>) -> bool {
+    let mut now = view.slice.held.clone();
+    let held: Vec<usize> = (0..now.len()).filter(|&i| view.slice.holds(i)).collect();
+    for &i in &held {
+        let Some(survey) = view.model.now.iter().find(|survey| survey.species.0 == i) else { return false };
+        now[i] = survey.value;
+    }
+    view.slice.has(&now)
+}
+
+/// A straight path as a legend shows it.
+fn straight_in_words(octant: Octant, style: Style) -> String {
+    let sign = |is_tip| Mark::Straight(octant, is_tip).glyph(style);
+    match style {
+        Style::Unicode => sign(true).to_string(),
+        // To the left and down the tip comes first, as on the line itself.
+        Style::Ascii if matches!(octant.index(), 3..=6) => format!("{}{}", sign(true), sign(false)),
+        Style::Ascii => format!("{}{}", sign(false), sign(true)),
+    }
 }
 
 fn rate(view: &View<'_>) -> String {
@@ -91,12 +120,12 @@ fn equilibrium(view: &View<'_>, picture: &Picture, index: usize, page: &Page) ->
     let mut said = format!("{id}: {}; {}; {there}", at(view, place), kind(view, index));
     let frame = picture.frame();
     match frame.cell(if view.slice.y.is_some() { place } else { [place[0], 0.0] }) {
-        None => said.push_str("; outside the part that is drawn"),
+        None => said += "; outside the part that is drawn",
         Some(cell) => {
             let other = |&other: &usize| other != index && view.place(other).and_then(|p| frame.cell(p)) == Some(cell);
             if let Some(other) = view.in_slice().find(other) {
                 let other = view.ids.get(other).map_or("", String::as_str);
-                said.push_str(&format!("; in one cell with {other}"));
+                said = format!("{said}; in one cell with {other}");
             }
         }
     }
@@ -132,17 +161,24 @@ fn notes(view: &View<'_>, shown: &[usize]) -> Vec<String> {
     if shown.len() > MOST_LISTED {
         notes.push(format!("{} more are drawn; the table lists all.", shown.len() - MOST_LISTED));
     }
-    let (is_proof, verdict) = verdict(found);
-    notes.push(format!("{}: {verdict}", if is_proof { "proved" } else { "NOT PROVED COMPLETE" }));
-    if !found.unresolved.is_empty() {
-        notes.push("Undecided parts of the search box are not drawn; the table has them.".to_owned());
-    }
-    if let Some(now) =
-        view.now().filter(|_| view.slice.y.is_some() && !view.window.holds(view.now().unwrap_or_default()))
+    notes.push(complete(found).to_owned());
+    if let (Some(now), Some(_)) = (view.now(), view.slice.y)
+        && !view.window.holds(now)
     {
         notes.push(format!("Today's stocks, {}, lie outside the part that is drawn.", at(view, now)));
     }
     notes
+}
+
+/// What is known of the list of equilibria.
+fn complete(found: &Equilibria) -> &'static str {
+    match (found.complete, found.unresolved.is_empty()) {
+        (true, _) => "proved: no other equilibrium is in the search box.",
+        (false, true) => "NOT PROVED COMPLETE: the search box may hold others.",
+        (false, false) => {
+            "NOT PROVED COMPLETE: the search box may hold others in the undecided parts, which the table lists."
+        }
+    }
 }
 
 /// What the species that are not along an axis are held at; `None` where there are none.
@@ -153,18 +189,18 @@ pub(super) fn held(view: &View<'_>) -> Option<String> {
         Held::Now => "as they are today".to_owned(),
         Held::Lower => "at the lower side of the search box".to_owned(),
     };
-    let held: Vec<usize> = (0..view.slice.held.len()).filter(|&i| view.slice.holds(i)).collect();
+    let held = (0..view.slice.held.len()).filter(|&i| view.slice.holds(i));
+    let (present, absent): (Vec<usize>, Vec<usize>) = held.partition(|&i| view.slice.held[i] != 0.0);
     let value = |&i: &usize| format!("{} = {}", symbol(view.model, i), human(view.slice.held[i]));
-    // A community's absent species need no mention one by one.
-    let present: Vec<String> = held.iter().filter(|&&i| view.slice.held[i] != 0.0).map(value).collect();
-    let absent: Vec<String> =
-        held.iter().filter(|&&i| view.slice.held[i] == 0.0).map(|&i| symbol(view.model, i)).collect();
-    let absent = match absent.len() {
-        0 => None,
-        1..=6 => Some(format!("{} = 0", absent.join(" = "))),
-        count => Some(format!("{count} species absent")),
-    };
-    let all: Vec<String> = present.into_iter().chain(absent).collect();
+    let mut all: Vec<String> = present.iter().take(MOST_HELD).map(value).collect();
+    if present.len() > MOST_HELD {
+        all.push(format!("{} more as the table has them", present.len() - MOST_HELD));
+    }
+    match absent.len() {
+        0 => {}
+        1..=MOST_HELD => all.extend(absent.iter().map(value)),
+        count => all.push(format!("{count} species absent")),
+    }
     Some(format!("Held {from}: {}", all.join(", ")))
 }
 

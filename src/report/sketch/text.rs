@@ -53,12 +53,11 @@ fn drawing(view: &View<'_>, picture: &Picture, canvas: &Canvas, page: &Page) -> 
     }
     let ticks = across(frame.window.x, canvas.columns);
     let axis = (0..canvas.columns).map(|c| if ticks.iter().any(|tick| tick.place == c) { tick_level } else { level });
-    text.push_str(&format!("{:LABEL$}{corner}{}\n", "", axis.collect::<String>()));
-    text.push_str(&format!("{}\n", numbers(&ticks, width).trim_end()));
+    let axis = axis.collect::<String>();
+    let numbers = numbers(&ticks, width);
     let caption = fitted(&caption(view.model, view.slice.x), width, page);
     let room = width - caption.width().min(width);
-    text.push_str(&format!("{:room$}{caption}\n", ""));
-    text
+    text + &format!("{:LABEL$}{corner}{axis}\n{}\n{:room$}{caption}\n", "", numbers.trim_end(), "")
 }
 
 fn upward_caption(view: &View<'_>) -> String {

@@ -1,5 +1,7 @@
 //! Round numbers along an axis, and where their labels stand so that none touches another.
 
+use crate::analysis::field::nearest;
+
 /// A number on an axis.
 #[derive(Clone, Debug, PartialEq)]
 pub struct Tick {
@@ -40,7 +42,7 @@ pub fn round_numbers([low, high]: [f64; 2], most: usize) -> (f64, Vec<f64>) {
         let (first, last) = ((low / step).ceil(), (high / step).floor());
         let count = last - first + 1.0;
         if step > 0.0 && count <= most as f64 && first.abs().max(last.abs()) < 1e12 {
-            let numbers = (0..count.max(0.0) as usize).map(|k| (first + k as f64) * step + 0.0);
+            let numbers = (0..nearest(count, most)).map(|k| (first + k as f64) * step + 0.0);
             return (step, numbers.collect());
         }
     }
@@ -49,8 +51,8 @@ pub fn round_numbers([low, high]: [f64; 2], most: usize) -> (f64, Vec<f64>) {
 
 fn ticks(sides: [f64; 2], cells: usize, most: usize) -> Vec<Tick> {
     let (step, numbers) = round_numbers(sides, most);
-    let place = |x: f64| ((x - sides[0]) / (sides[1] - sides[0]) * (cells - 1) as f64).round().max(0.0) as usize;
-    numbers.into_iter().map(|x| Tick { place: place(x).min(cells - 1), label: label(x, step) }).collect()
+    let place = |x: f64| nearest((x - sides[0]) / (sides[1] - sides[0]) * (cells - 1) as f64, cells - 1);
+    numbers.into_iter().map(|x| Tick { place: place(x), label: label(x, step) }).collect()
 }
 
 /// A multiple of a step, to as many digits as the step has.
@@ -58,11 +60,12 @@ fn label(x: f64, step: f64) -> String {
     if x == 0.0 {
         return "0".to_owned();
     }
-    let decimals = |exponent: f64| exponent.max(0.0) as usize;
+    // More digits than this are rounding.
+    let decimals = |exponent: f64| nearest(exponent, 15);
     let last = step.log10().floor();
     if x.abs() >= LARGE || step < SMALL {
         let first = x.abs().log10().floor();
-        return format!("{x:.*e}", decimals(first - last).min(15));
+        return format!("{x:.*e}", decimals(first - last));
     }
     format!("{x:.*}", decimals(-last))
 }

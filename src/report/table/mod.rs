@@ -25,7 +25,7 @@ pub use data::json;
 pub use identity::identify;
 pub use number::{bound, human, human_above, human_below};
 pub use text::{Page, failed, text};
-pub(super) use words::{CAUTION, verdict};
+pub(super) use words::CAUTION;
 
 pub use super::check::Style;
 

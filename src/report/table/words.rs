@@ -44,7 +44,7 @@ pub(super) fn why(derivative: Derivative) -> Option<&'static str> {
 }
 
 /// What the search of a scenario came to, and whether that is a proof.
-pub(in crate::report) fn verdict(equilibria: &Equilibria) -> (bool, String) {
+pub(super) fn verdict(equilibria: &Equilibria) -> (bool, String) {
     let count = equilibria.list.len();
     let listed = match count {
         0 => "No equilibrium is in the search box".to_owned(),
