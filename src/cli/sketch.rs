@@ -92,7 +92,7 @@ impl Drawer<'_> {
         let solved: Vec<&Solved> = scenes.iter().filter_map(|scene| scene.outcome.as_ref().ok()).collect();
         let lists: Vec<&[_]> = solved.iter().map(|solved| &solved.equilibria.list[..]).collect();
         let sides: Vec<[f64; 2]> = self.prepared.bounds.iter().map(|bound| [bound.lower, bound.upper]).collect();
-        let window = window(self.model, &sides, &solved, self.axes);
+        let window = window(self.model, &self.prepared.bounds, &solved, self.axes);
         let mut ids = identify(&lists).into_iter();
         let page = self.page();
         let mut out = heading(self.model, page);

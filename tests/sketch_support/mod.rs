@@ -14,6 +14,7 @@ use restpoint::expr::tape::Tape;
 use restpoint::model::Model;
 use restpoint::model::load::{NoFiles, load};
 use restpoint::model::system::System;
+use restpoint::model::system::bounds::Bound;
 use restpoint::num::eigen::{Spectrum, Vectors};
 use restpoint::report::sketch::{Canvas, Picture, Plot, Size, Style, View, draw, text, window};
 use restpoint::report::table::{Page, Solved, identify};
@@ -22,15 +23,15 @@ use restpoint::report::table::{Page, Solved, identify};
 pub struct Loaded {
     pub model: Model,
     pub system: System,
-    pub sides: Vec<[f64; 2]>,
+    pub bounds: Vec<Bound>,
 }
 
 pub fn loaded(yaml: &str) -> Loaded {
     let (model, _, found) = load("m.yaml", yaml.as_bytes(), &NoFiles);
     let model = model.unwrap_or_else(|| panic!("{found:?}"));
     let mut system = System::new(&model, &[]).unwrap();
-    let sides = system.bounds(&model).unwrap().iter().map(|bound| [bound.lower, bound.upper]).collect();
-    Loaded { model, system, sides }
+    let bounds = system.bounds(&model).unwrap();
+    Loaded { model, system, bounds }
 }
 
 /// The shipped model of that name.
@@ -41,7 +42,8 @@ pub fn shipped(name: &str) -> Loaded {
 
 impl Loaded {
     pub fn subject(&self, scenario: usize) -> Subject<'_> {
-        Subject::new(&self.model, &self.system.graph, &self.system.plans[scenario], self.sides.clone())
+        let sides = self.bounds.iter().map(|bound| [bound.lower, bound.upper]).collect();
+        Subject::new(&self.model, &self.system.graph, &self.system.plans[scenario], sides)
     }
 
     pub fn solved(&self, scenario: usize) -> Solved {
@@ -67,7 +69,7 @@ impl Loaded {
         let axes = seen.axes.unwrap_or_else(|| Slice::axes(&self.model));
         let mut subject = self.subject(seen.scenario);
         let slice = Slice::new(&subject, axes, &solved.equilibria, &solved.assessment);
-        let window = seen.window.unwrap_or_else(|| window(&self.model, &self.sides, &[&solved], axes));
+        let window = seen.window.unwrap_or_else(|| window(&self.model, &self.bounds, &[&solved], axes));
         let view =
             View { model: &self.model, scenario: seen.scenario, solved: &solved, ids: &ids, slice: &slice, window };
         let picture = Picture::new(&mut subject, &view, &Plot::of(seen.size));
@@ -109,7 +111,7 @@ fn planar(subject: &mut Subject<'_>, state: &[f64]) -> Linearisation {
 
 /// The linear part that a matrix [[a, b], [c, d]] stands for; only what a sketch uses is filled in.
 pub fn linear([a, b, c, d]: [f64; 4], is_map: bool) -> Linearisation {
-    let (half, product) = ((a + d) / 2.0, a * d - b * c);
+    let (half, product) = (f64::midpoint(a, d), a * d - b * c);
     let discriminant = half * half - product;
     let root = Complex::new(discriminant, 0.0).sqrt();
     let values = vec![root + half, -root + half];

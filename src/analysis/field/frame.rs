@@ -147,7 +147,7 @@ mod tests {
             // Half a tenth of a degree off, so that no direction is on a border.
             let angle = (f64::from(k) + 0.5) / 10.0;
             let (sin, cos) = angle.to_radians().sin_cos();
-            let expected = (angle / 45.0).round() as usize % Octant::COUNT;
+            let expected = nearest(angle / 45.0, 8) % Octant::COUNT;
             for size in [1e-300, 1.0, 1e300] {
                 let octant = Octant::of([size * cos, size * sin]);
                 assert_eq!(octant.map(Octant::index), Some(expected), "{angle} degrees");

@@ -9,7 +9,7 @@ use crate::analysis::field::{Frame, Octant, Portrait, Profile, Straight, nearest
 /// A straight path is drawn over this share of the frame's smaller side to either side, in widths of a column.
 const SHARE: f64 = 0.15;
 /// Within these.
-const REACH: [f64; 2] = [4.0, 14.0];
+const REACH: [f64; 2] = [2.0, 14.0];
 
 /// Cells, row by row from the lowest.
 #[derive(Clone, Debug, PartialEq)]

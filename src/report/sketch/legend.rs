@@ -4,7 +4,7 @@ use super::canvas::Canvas;
 use super::signs::{Growth, Mark, flow, listed};
 use super::{Picture, Style, View};
 use crate::analysis::equilibria::Equilibria;
-use crate::analysis::field::{Held, Octant};
+use crate::analysis::field::Held;
 use crate::analysis::linearise::Unavailable;
 use crate::model::{Model, TimeKind};
 use crate::report::table::{Page, human};
@@ -41,7 +41,7 @@ fn signs(view: &View<'_>, picture: &Picture, canvas: &Canvas, style: Style) -> V
         if let Some(mark) = mark {
             let sign = match mark {
                 Mark::Flow(octant, _) => flow(octant, style).to_owned(),
-                Mark::Straight(octant, _) => straight_in_words(octant, style),
+                Mark::Straight(..) if style == Style::Ascii => "-->".to_owned(),
                 mark => mark.glyph(style).to_string(),
             };
             signs.push((sign, meaning));
@@ -79,17 +79,6 @@ fn stays(view: &View<'_>) -> bool {
         now[i] = survey.value;
     }
     view.slice.has(&now)
-}
-
-/// A straight path as a legend shows it.
-fn straight_in_words(octant: Octant, style: Style) -> String {
-    let sign = |is_tip| Mark::Straight(octant, is_tip).glyph(style);
-    match style {
-        Style::Unicode => sign(true).to_string(),
-        // To the left and down the tip comes first, as on the line itself.
-        Style::Ascii if matches!(octant.index(), 3..=6) => format!("{}{}", sign(true), sign(false)),
-        Style::Ascii => format!("{}{}", sign(false), sign(true)),
-    }
 }
 
 fn rate(view: &View<'_>) -> String {

@@ -25,6 +25,7 @@ use super::table::Solved;
 use crate::analysis::field::{Flow, Frame, Portrait, Profile, Slice, Window, around, portrait, profile};
 use crate::analysis::subject::Subject;
 use crate::model::Model;
+use crate::model::system::bounds::{Bound, HEADROOM};
 
 /// What is looked at: one scenario's equilibria from in front of a slice.
 #[derive(Clone, Copy, Debug)]
@@ -105,12 +106,19 @@ impl View<'_> {
 
 /// The part of the plane that holds every equilibrium of some scenarios, and today's stocks, with a margin; within the
 /// search box. One window for all, so that the sketches can be compared.
-pub fn window(model: &Model, sides: &[[f64; 2]], scenes: &[&Solved], [x, y]: [usize; 2]) -> Window {
+///
+/// Along a species that is nowhere present it reaches to the level that the box was chosen by, else to the box's side.
+pub fn window(model: &Model, bounds: &[Bound], scenes: &[&Solved], [x, y]: [usize; 2]) -> Window {
     let along = |species: usize| {
         let states = scenes.iter().flat_map(|solved| &solved.equilibria.list).filter_map(|e| e.state.get(species));
         let now = model.now.iter().filter(|survey| survey.species.0 == species).map(|survey| &survey.value);
-        let box_sides = sides.get(species).copied().unwrap_or([0.0, 1.0]);
-        around(box_sides, states.chain(now).copied())
+        let Some(bound) = bounds.get(species) else { return [0.0, 1.0] };
+        let sides = [bound.lower, bound.upper];
+        let mut seen: Vec<f64> = states.chain(now).copied().collect();
+        if bound.chosen && seen.iter().all(|&x| x <= bound.lower) {
+            seen.push(bound.upper / HEADROOM);
+        }
+        around(sides, seen.into_iter())
     };
     Window { x: along(x), y: along(y) }
 }

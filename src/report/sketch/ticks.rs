@@ -107,7 +107,7 @@ mod tests {
             let size = 10f64.powf(source.between(-12.0, 12.0));
             let low = if source.unit() < 0.5 { 0.0 } else { size * source.between(-3.0, 3.0) };
             let sides = [low, low + size * source.between(0.01, 3.0)];
-            let cells = source.between(8.0, 250.0) as usize;
+            let cells = nearest(source.between(8.0, 250.0), 250);
             let (step, numbers) = round_numbers(sides, cells / 3);
             let digits = step / 10f64.powf(step.log10().floor());
             assert!([1.0, 2.0, 5.0, 10.0].iter().any(|d| (digits / d - 1.0).abs() < 1e-9), "step {step}");
