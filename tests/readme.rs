@@ -31,12 +31,16 @@ fn first_cells(heading: &str) -> Vec<&'static str> {
     rows.map(|row| row.split('`').nth(1).unwrap()).collect()
 }
 
-/// What `restpoint COMMAND velmo.yaml` writes to both streams, and how it ends.
+/// What `restpoint` writes of `velmo.yaml` to both streams, and how it ends.
 fn run(command: &str, model: &str) -> (String, Option<i32>) {
+    run_with(&[command, "velmo.yaml"], model)
+}
+
+fn run_with(arguments: &[&str], model: &str) -> (String, Option<i32>) {
     let folder = tempfile::tempdir().unwrap();
     fs::write(folder.path().join("velmo.yaml"), model).unwrap();
     let mut program = Command::new(env!("CARGO_BIN_EXE_restpoint"));
-    let run = program.args([command, "velmo.yaml"]).current_dir(folder.path()).output().unwrap();
+    let run = program.args(arguments).current_dir(folder.path()).output().unwrap();
     (String::from_utf8([run.stdout, run.stderr].concat()).unwrap(), run.status.code())
 }
 
@@ -53,10 +57,13 @@ fn the_first_model_is_sound_and_raises_no_warning() {
 
 #[test]
 fn what_is_shown_is_current() {
-    let [shown, wrong, table] = blocks("text")[..] else { panic!("three blocks of output") };
+    let [shown, wrong, table, sketch] = blocks("text")[..] else { panic!("four blocks of output") };
     assert_eq!(run("check", &model()), (format!("{shown}\n"), Some(0)));
     assert_eq!(run("check", &model().replace("a*H*P", "a*h*P")), (format!("{wrong}\n"), Some(1)));
     assert_eq!(run("table", &model()), (format!("{table}\n"), Some(0)));
+    let half = ["sketch", "velmo.yaml", "--scenario", "half the nets", "--size", "78x22"];
+    assert!(README.contains("sketch velmo.yaml --scenario \"half the nets\" --size 78x22`"));
+    assert_eq!(run_with(&half, &model()), (format!("{sketch}\n"), Some(0)));
 }
 
 #[test]

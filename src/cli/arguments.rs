@@ -4,6 +4,8 @@ use std::path::PathBuf;
 
 use clap::{Args, Parser, Subcommand, ValueEnum};
 
+use crate::report::sketch::{LARGEST, SMALLEST, Size};
+
 /// Seconds that the search of one scenario may take where `--budget` does not say.
 pub(super) const BUDGET: f64 = 10.0;
 
@@ -52,6 +54,26 @@ pub(super) enum Command {
         #[command(flatten)]
         work: Work,
     },
+    /// Draw the direction field of each scenario, with its equilibria, in characters
+    #[command(
+        after_help = "The drawing shows what lies around the equilibria and today's stocks, for all scenarios alike."
+    )]
+    Sketch(Sketch),
+}
+
+/// What is to be drawn.
+#[derive(Debug, Args)]
+pub(super) struct Sketch {
+    /// Model file in YAML, or - for standard input
+    pub(super) model: PathBuf,
+    /// Columns and rows of each drawing; its legend comes below [default: as the terminal allows, else 80x24]
+    #[arg(long, value_name = "COLSxROWS", value_parser = size)]
+    pub(super) size: Option<Size>,
+    /// Symbols of the species across and upwards [default: as the model says, else the first two]
+    #[arg(long, value_name = "X,Y", value_parser = axes)]
+    pub(super) axes: Option<[String; 2]>,
+    #[command(flatten)]
+    pub(super) work: Work,
 }
 
 /// What is to be solved, and at what cost.
@@ -95,6 +117,29 @@ fn setting(text: &str) -> Result<(String, f64), String> {
     match value.trim().parse() {
         Ok(number) if f64::is_finite(number) => Ok((name.trim().to_owned(), number)),
         _ => Err(format!("\"{}\" is not a finite number", value.trim())),
+    }
+}
+
+fn size(text: &str) -> Result<Size, String> {
+    let (least, most) = (SMALLEST, LARGEST);
+    let read = || {
+        let (columns, rows) = text.split_once(['x', 'X'])?;
+        Some(Size { columns: columns.trim().parse().ok()?, rows: rows.trim().parse().ok()? })
+    };
+    let Some(size) = read() else { return Err("write columns, x and rows, for example 100x30".to_owned()) };
+    if size.columns < least.columns || size.rows < least.rows {
+        return Err(format!("the smallest drawing is {}x{}", least.columns, least.rows));
+    }
+    if size.columns > most.columns || size.rows > most.rows {
+        return Err(format!("the largest drawing is {}x{}", most.columns, most.rows));
+    }
+    Ok(size)
+}
+
+fn axes(text: &str) -> Result<[String; 2], String> {
+    match text.split(',').map(str::trim).collect::<Vec<_>>()[..] {
+        [x, y] if !x.is_empty() && !y.is_empty() && x != y => Ok([x.to_owned(), y.to_owned()]),
+        _ => Err("write the symbols of two species with a comma between, for example S,C".to_owned()),
     }
 }
 

@@ -44,6 +44,26 @@ fn scenario(model: &Model, name: &str) -> Result<usize, String> {
     found.ok_or_else(|| unknown("scenario", &composed, known))
 }
 
+/// The species with these symbols, across and upwards.
+///
+/// # Errors
+/// Which symbol no species has, with the nearest that one has.
+pub(super) fn axes(model: &Model, [x, y]: &[String; 2]) -> Result<[usize; 2], String> {
+    if model.species.len() == 1 {
+        return Err("the model has one species; its sketch shows the rate against the abundance".to_owned());
+    }
+    let (x, y) = (species(model, x)?, species(model, y)?);
+    if x == y { Err("the axes must be two different species".to_owned()) } else { Ok([x, y]) }
+}
+
+fn species(model: &Model, symbol: &str) -> Result<usize, String> {
+    let composed: String = symbol.nfc().collect();
+    match model.names.get(&composed) {
+        Some(Name::Species(id)) => Ok(id.0),
+        _ => Err(unknown("species", &composed, || model.species.iter().map(|species| species.symbol.as_str()))),
+    }
+}
+
 fn parameter(model: &Model, name: &str) -> Result<ParameterId, String> {
     let composed: String = name.nfc().collect();
     match model.names.get(&composed) {

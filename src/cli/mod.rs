@@ -17,6 +17,8 @@ mod arguments;
 mod check;
 mod choice;
 mod model;
+mod sketch;
+mod solve;
 mod table;
 
 /// How a run ended; the numbers are part of the contract.
@@ -61,6 +63,8 @@ impl Outcome {
 struct Screen {
     /// Columns for results.
     width: usize,
+    /// Rows for results, where a terminal has them.
+    height: Option<usize>,
     /// Whether results may be coloured.
     color: bool,
     /// Whether remarks may be coloured.
@@ -106,6 +110,7 @@ fn perform(arguments: &Arguments, screen: Screen) -> Outcome {
     match &arguments.command {
         Some(Command::Check { model }) => check::check(Some(model), options, screen.color_remarks),
         Some(Command::Table { model, work }) => table::table(Some(model), work, options, screen),
+        Some(Command::Sketch(asked)) => sketch::sketch(asked, options, screen),
         None => table::table(arguments.model.as_deref(), &arguments.work, options, screen),
     }
 }
@@ -123,12 +128,13 @@ fn misplaced(arguments: &Arguments) -> Option<(Exit, String)> {
 fn screen(options: &Options) -> Screen {
     let on_terminal = options.output.is_none() && io::stdout().is_terminal();
     let width = if on_terminal { terminal::width() } else { terminal::COLUMNS };
+    let height = if on_terminal { terminal::height() } else { None };
     let color = |is_terminal| match options.color {
         Color::Always => true,
         Color::Never => false,
         Color::Auto => is_terminal && colour_can_be_shown(),
     };
-    Screen { width, color: color(on_terminal), color_remarks: color(io::stderr().is_terminal()) }
+    Screen { width, height, color: color(on_terminal), color_remarks: color(io::stderr().is_terminal()) }
 }
 
 /// Whether the terminal can show colour, and its user has not asked for none (NO_COLOR, set and not empty).

@@ -2,27 +2,18 @@
 
 use std::path::Path;
 
-use crate::analysis::assess::Assessment;
-use crate::analysis::equilibria::{Budget, Problem, all, balance};
 use crate::diag::Diagnostic;
 use crate::diag::cleanse::cleanse;
-use crate::model::system::System;
-use crate::model::system::bounds::Bound;
-use crate::model::{Model, ParameterId};
+use crate::model::Model;
 use crate::report::table::{Limits, Page, Scene, Solved, Style, Table, json, text};
-use crate::shell::clock::Deadline;
-use crate::shell::progress::Meter;
 use crate::shell::signal::Interrupt;
 use crate::shell::workers::Threads;
 
 use super::arguments::{BUDGET, Format, Options, Work};
 use super::choice::Choice;
 use super::model::{Original, Reading, pretty, read, remarks, wrong};
+use super::solve::{BOXES, Prepared, Solver};
 use super::{Exit, Outcome, Screen};
-
-/// Boxes on one face, beyond which the search goes on to the next. A face of a model that can be settled at all takes
-/// tens to thousands.
-const BOXES: usize = 50_000;
 
 /// Finds and shows the equilibria of the model at `path`, or of the one compiled in.
 pub(super) fn table(path: Option<&Path>, work: &Work, options: &Options, screen: Screen) -> Outcome {
@@ -58,83 +49,6 @@ pub(super) fn table(path: Option<&Path>, work: &Work, options: &Options, screen:
         interrupted: interrupt.is_raised(),
     };
     present(&table, &original, work, options, screen)
-}
-
-/// The equations of every scenario that has any.
-struct Prepared {
-    system: System,
-    bounds: Vec<Bound>,
-    /// For each scenario of the model, its plan, or why it has none.
-    plans: Vec<Plan>,
-}
-
-/// A plan's index, or what is wrong with the scenario.
-type Plan = Result<usize, Vec<Diagnostic>>;
-
-impl Prepared {
-    fn new(model: &Model, set: &[(ParameterId, f64)]) -> Result<Self, Vec<Diagnostic>> {
-        // The box is the same whatever scenarios are asked for, so all that can be are assembled.
-        if let Ok(system) = System::new(model, set) {
-            return Self::with_box(model, system, (0..model.scenarios.len()).map(Ok).collect());
-        }
-        let mut sound = Vec::new();
-        let mut plans = Vec::new();
-        for scenario in &model.scenarios {
-            let alone = Model { scenarios: vec![scenario.clone()], ..model.clone() };
-            plans.push(match System::new(&alone, set) {
-                Ok(_) => {
-                    sound.push(scenario.clone());
-                    Ok(sound.len() - 1)
-                }
-                Err(problems) => Err(problems),
-            });
-        }
-        let model = &Model { scenarios: sound, ..model.clone() };
-        Self::with_box(model, System::new(model, set)?, plans)
-    }
-
-    fn with_box(model: &Model, mut system: System, plans: Vec<Plan>) -> Result<Self, Vec<Diagnostic>> {
-        let bounds = system.bounds(model)?;
-        Ok(Self { system, bounds, plans })
-    }
-}
-
-/// All that the search of a scenario needs.
-struct Solver<'s> {
-    model: &'s Model,
-    prepared: &'s Prepared,
-    limits: Limits,
-    threads: Threads,
-    interrupt: &'s Interrupt,
-}
-
-impl Solver<'_> {
-    fn scene(&self, scenario: usize) -> Scene {
-        let outcome = match &self.prepared.plans[scenario] {
-            Ok(plan) => Ok(self.solve(*plan)),
-            Err(problem) => Err(problem.clone()),
-        };
-        Scene { scenario, outcome }
-    }
-
-    fn solve(&self, plan: usize) -> Solved {
-        let System { graph, plans } = &self.prepared.system;
-        let plan = &plans[plan];
-        // A graph of its own for each scenario, so that no result hangs on which others were asked for.
-        let graph = &mut graph.clone();
-        let rows = balance(graph, &plan.rows, &self.model.time);
-        let sides: Vec<[f64; 2]> = self.prepared.bounds.iter().map(|bound| [bound.lower, bound.upper]).collect();
-        let deadline = Deadline::after(self.limits.seconds);
-        let meter = Meter::start();
-        let budget = Budget {
-            boxes: self.limits.boxes,
-            stop: &|| self.interrupt.is_raised() || deadline.is_past(),
-            workers: &self.threads,
-            observer: Some(&|done| meter.add(done)),
-        };
-        let equilibria = all(graph, &Problem { rows: &rows, values: &plan.values, sides: &sides }, &budget);
-        Solved { values: plan.values.clone(), equilibria, assessment: Assessment::default() }
-    }
 }
 
 fn present(table: &Table<'_>, original: &Original, work: &Work, options: &Options, screen: Screen) -> Outcome {

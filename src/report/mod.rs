@@ -1,8 +1,9 @@
 //! What is shown of a model and its results, as text and as data; no terminal, no files.
 //!
-//! [`check`] says what was understood of a model file, [`table`] what equilibria its scenarios have, [`kinds`] how each kind
-//! of equilibrium is written.
+//! [`check`] says what was understood of a model file, [`table`] what equilibria its scenarios have, [`sketch`] draws their
+//! direction field, [`kinds`] is how each kind of equilibrium is written.
 
 pub mod check;
 pub mod kinds;
+pub mod sketch;
 pub mod table;

@@ -7,9 +7,18 @@ use crossterm::terminal::window_size;
 /// Columns where no terminal says otherwise.
 pub const COLUMNS: usize = 80;
 
+/// Rows where no terminal says otherwise.
+pub const ROWS: usize = 24;
+
 /// Columns of the terminal that standard output is, or 80 where it is none or does not say.
 pub fn width() -> usize {
     if io::stdout().is_terminal() { of_terminal() } else { COLUMNS }
+}
+
+/// Rows of the terminal that standard output is; `None` where it is none or does not say.
+pub fn height() -> Option<usize> {
+    let rows = || window_size().map(|size| usize::from(size.rows)).ok().filter(|&rows| rows > 0);
+    io::stdout().is_terminal().then(rows).flatten()
 }
 
 /// Columns of the terminal that standard error is, or 80 where it is none or does not say.

@@ -24,7 +24,8 @@ pub use columns::{COLUMNS, Column};
 pub use data::json;
 pub use identity::identify;
 pub use number::{bound, human, human_above, human_below};
-pub use text::{Page, text};
+pub use text::{Page, failed, text};
+pub(super) use words::CAUTION;
 
 pub use super::check::Style;
 

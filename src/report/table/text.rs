@@ -31,7 +31,7 @@ pub struct Page {
 
 impl Page {
     /// A text from a file, harmless, and in ASCII where asked for.
-    pub(super) fn clean(&self, text: &str) -> String {
+    pub(in crate::report) fn clean(&self, text: &str) -> String {
         let text = cleanse(text);
         if self.style == Style::Unicode || text.is_ascii() {
             return text.into_owned();
@@ -39,7 +39,7 @@ impl Page {
         text.chars().map(|c| if c.is_ascii() { c.to_string() } else { c.escape_default().to_string() }).collect()
     }
 
-    fn paragraph(&self, first: &str, text: &str, indent: usize) -> String {
+    pub(in crate::report) fn paragraph(&self, first: &str, text: &str, indent: usize) -> String {
         let words: Vec<String> = text.split_whitespace().map(|word| self.clean(word)).collect();
         paragraph(first, &words.join(" "), indent, self.width)
     }
@@ -194,7 +194,8 @@ fn undecided(table: &Table<'_>, one: &Unresolved, page: &Page) -> String {
     lines.replacen("undecided", &Ink::Undecided.paint("undecided", page), 1)
 }
 
-fn failed(model: &Model, scene: &Scene, problems: &[Diagnostic], page: &Page) -> String {
+/// A scenario that nothing could be looked for in, and why.
+pub fn failed(model: &Model, scene: &Scene, problems: &[Diagnostic], page: &Page) -> String {
     let mut text = name(model, scene, page);
     for problem in problems {
         let (file, line, column) = position(&model.sources, problem.at);

@@ -6,7 +6,7 @@ use crate::model::Species;
 use super::number::human;
 
 /// What every table ends with.
-pub(super) const CAUTION: &str = "These are local results about a model, no better than its equations and its \
+pub(in crate::report) const CAUTION: &str = "These are local results about a model, no better than its equations and its \
      figures. Limits on catch, bag or control are set by the responsible authority, under local law and in licensed \
      practice.";
 

@@ -1,0 +1,137 @@
+//! `restpoint sketch`: the direction field of each scenario as text.
+
+use crate::analysis::field::{Slice, Window};
+use crate::analysis::subject::Subject;
+use crate::diag::Diagnostic;
+use crate::diag::cleanse::cleanse;
+use crate::model::Model;
+use crate::report::sketch::{Picture, Plot, Size, Style, View, closing, heading, legend_rows, text, window};
+use crate::report::table::{Limits, Page, Scene, Solved, failed, identify};
+use crate::shell::signal::Interrupt;
+use crate::shell::terminal::ROWS;
+use crate::shell::workers::Threads;
+
+use super::arguments::{BUDGET, Format, Options, Sketch, Work};
+use super::choice::{self, Choice};
+use super::model::{Original, Reading, read, remarks, wrong};
+use super::solve::{BOXES, Prepared, Solver};
+use super::{Exit, Outcome, Screen};
+
+/// Rows below which a drawing is not cut to let its legend fit the terminal as well.
+const ENOUGH: usize = 16;
+
+/// Draws the scenarios of a model.
+pub(super) fn sketch(asked: &Sketch, options: &Options, screen: Screen) -> Outcome {
+    if options.format != Format::Text {
+        let reason = "error: a sketch has only --format text; \"restpoint table\" has the other formats\n";
+        return Outcome::only(reason.to_owned(), Exit::Usage);
+    }
+    let original = match read(Some(&asked.model)) {
+        Reading::Unreadable(reason) => return Outcome::only(reason, Exit::Fault),
+        Reading::Wrong(sources, found) => return wrong(&found, &sources, options, screen.color_remarks),
+        Reading::Model(original) => original,
+    };
+    let model = &original.model;
+    let chosen = Choice::new(model, &asked.work).and_then(|choice| {
+        let axes = asked.axes.as_ref().map(|axes| choice::axes(model, axes)).transpose()?;
+        Ok((choice, axes.unwrap_or_else(|| Slice::axes(model))))
+    });
+    let (choice, axes) = match chosen {
+        Ok(chosen) => chosen,
+        Err(reason) => return Outcome::only(format!("error: {}\n", cleanse(&reason)), Exit::Usage),
+    };
+    let prepared = match Prepared::new(model, &choice.set) {
+        Ok(prepared) => prepared,
+        Err(found) => return wrong(&found, &model.sources, options, screen.color_remarks),
+    };
+    let interrupt = Interrupt::listen();
+    let limits = Limits { seconds: asked.work.budget.unwrap_or(BUDGET), boxes: BOXES };
+    let threads = asked.work.threads.map_or_else(Threads::available, |count| Threads::new(count.into()));
+    let solver = Solver { model, prepared: &prepared, limits, threads, interrupt: &interrupt };
+    let scenes: Vec<Scene> = choice.scenarios.iter().map(|&scenario| solver.scene(scenario)).collect();
+    let drawer = Drawer { model, prepared: &prepared, axes, size: asked.size, options, screen };
+    present(&drawer.all(&scenes, interrupt.is_raised()), &scenes, &original, asked, screen, interrupt.is_raised())
+}
+
+fn present(
+    result: &str,
+    scenes: &[Scene],
+    original: &Original,
+    Sketch { work: Work { strict, .. }, .. }: &Sketch,
+    screen: Screen,
+    interrupted: bool,
+) -> Outcome {
+    let problems = scenes.iter().filter_map(|scene| scene.outcome.as_ref().err());
+    let failed: Vec<Diagnostic> = problems.flatten().cloned().collect();
+    let is_proved = |scene: &Scene| scene.outcome.as_ref().is_ok_and(Solved::is_proved);
+    let exit = if interrupted {
+        Exit::Interrupted
+    } else if !failed.is_empty() {
+        Exit::Fault
+    } else if *strict && !scenes.iter().all(is_proved) {
+        Exit::Unproved
+    } else {
+        Exit::Done
+    };
+    let remarks = remarks(&failed, &original.model.sources, screen.color_remarks);
+    Outcome { result: result.to_owned(), remarks, exit }
+}
+
+/// What all sketches of a run share.
+struct Drawer<'d> {
+    model: &'d Model,
+    prepared: &'d Prepared,
+    axes: [usize; 2],
+    size: Option<Size>,
+    options: &'d Options,
+    screen: Screen,
+}
+
+impl Drawer<'_> {
+    fn all(&self, scenes: &[Scene], interrupted: bool) -> String {
+        let solved: Vec<&Solved> = scenes.iter().filter_map(|scene| scene.outcome.as_ref().ok()).collect();
+        let lists: Vec<&[_]> = solved.iter().map(|solved| &solved.equilibria.list[..]).collect();
+        let sides: Vec<[f64; 2]> = self.prepared.bounds.iter().map(|bound| [bound.lower, bound.upper]).collect();
+        let window = window(self.model, &self.prepared.bounds, &solved, self.axes);
+        let mut ids = identify(&lists).into_iter();
+        let page = self.page();
+        let mut out = heading(self.model, page);
+        if interrupted {
+            out.push_str("INTERRUPTED: the search was broken off; this is a partial result.\n");
+        }
+        for scene in scenes {
+            out.push('\n');
+            out.push_str(&match &scene.outcome {
+                Ok(solved) => self.one(scene, solved, &ids.next().unwrap_or_default(), window, &sides),
+                Err(problems) => failed(self.model, scene, problems, &page),
+            });
+        }
+        out.push('\n');
+        out + &closing(page)
+    }
+
+    fn page(&self) -> Page {
+        let style = if self.options.ascii { Style::Ascii } else { Style::Unicode };
+        Page { width: self.size.map_or(self.screen.width, |size| size.columns), style, color: self.screen.color }
+    }
+
+    fn one(&self, scene: &Scene, solved: &Solved, ids: &[String], window: Window, sides: &[[f64; 2]]) -> String {
+        let Some(Ok(plan)) = self.prepared.plans.get(scene.scenario) else { return String::new() };
+        let system = &self.prepared.system;
+        let mut subject = Subject::new(self.model, &system.graph, &system.plans[*plan], sides.to_vec());
+        let slice = Slice::new(&subject, self.axes, &solved.equilibria, &solved.assessment);
+        let view = View { model: self.model, scenario: scene.scenario, solved, ids, slice: &slice, window };
+        let plot = Plot::of(self.size.unwrap_or_else(|| self.fitting(&view)));
+        let picture = Picture::new(&mut subject, &view, &plot);
+        text(&view, &picture, self.page())
+    }
+
+    /// A drawing that fills the terminal together with its legend; where there is none, one of the usual size.
+    fn fitting(&self, view: &View<'_>) -> Size {
+        let rows = match self.screen.height {
+            Some(height) => height.saturating_sub(legend_rows(view)).max(ENOUGH),
+            None => ROWS,
+        };
+        Size { columns: self.screen.width, rows }
+    }
+}

@@ -1,0 +1,244 @@
+//! What stands in which cell: a pure function of the numbers and the style.
+//!
+//! What matters more is drawn over what matters less: states, today's stocks, straight paths, divides, zero growth, flow.
+
+use super::signs::{Growth, Mark, flow, spacing};
+use super::{Picture, Style, View};
+use crate::analysis::field::{Frame, Octant, Portrait, Profile, Straight, nearest};
+
+/// A straight path is drawn over this share of the frame's smaller side to either side, in widths of a column.
+const SHARE: f64 = 0.15;
+/// Within these.
+const REACH: [f64; 2] = [2.0, 14.0];
+
+/// Cells, row by row from the lowest.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Canvas {
+    /// Cells side by side.
+    pub columns: usize,
+    /// Cells one above the other.
+    pub rows: usize,
+    cells: Vec<Mark>,
+}
+
+impl Canvas {
+    fn new(frame: &Frame) -> Self {
+        let (columns, rows) = (frame.columns, frame.rows);
+        Self { columns, rows, cells: vec![Mark::Blank; columns * rows] }
+    }
+
+    /// What is in a cell; blank outside.
+    pub fn at(&self, column: usize, row: usize) -> Mark {
+        let is_inside = column < self.columns && row < self.rows;
+        if is_inside { self.cells[row * self.columns + column] } else { Mark::Blank }
+    }
+
+    /// A row from left to right, row 0 lowest.
+    pub fn row(&self, row: usize) -> &[Mark] {
+        self.cells.get(row * self.columns..(row + 1) * self.columns).unwrap_or_default()
+    }
+
+    /// Everything drawn.
+    pub fn marks(&self) -> impl Iterator<Item = Mark> + '_ {
+        self.cells.iter().copied()
+    }
+
+    fn put(&mut self, [column, row]: [usize; 2], mark: Mark) {
+        if column < self.columns && row < self.rows {
+            self.cells[row * self.columns + column] = mark;
+        }
+    }
+}
+
+/// Draws a picture.
+pub fn draw(view: &View<'_>, picture: &Picture, style: Style) -> Canvas {
+    let frame = picture.frame();
+    let mut canvas = Canvas::new(frame);
+    match picture {
+        Picture::Plane(portrait) => plane(&mut canvas, view, portrait),
+        Picture::Line(profile) => line(&mut canvas, profile),
+    }
+    states(&mut canvas, view, frame);
+    // Last, and only where there is room: a sign that something else cuts in two would read as another.
+    match picture {
+        Picture::Plane(portrait) => flow_in_plane(&mut canvas, portrait, style),
+        Picture::Line(profile) => flow_on_line(&mut canvas, profile, style),
+    }
+    canvas
+}
+
+fn plane(canvas: &mut Canvas, view: &View<'_>, portrait: &Portrait) {
+    let frame = &portrait.frame;
+    zero_growth(canvas, portrait);
+    for points in &portrait.divides {
+        for cell in course(points.iter().filter_map(|&point| frame.cell(point))) {
+            canvas.put(cell, Mark::Divide);
+        }
+    }
+    for (index, line) in &portrait.straight {
+        let Some(equilibrium) = view.solved.equilibria.list.get(*index) else { continue };
+        straight(canvas, frame, view.slice.project(&equilibrium.state), line);
+    }
+}
+
+fn flow_in_plane(canvas: &mut Canvas, portrait: &Portrait, style: Style) {
+    let frame = &portrait.frame;
+    directions(canvas, style, 0..frame.rows, |column, row| {
+        let cell = row * frame.columns + column;
+        Octant::of(frame.seen([portrait.motion.x[cell], portrait.motion.y[cell]]))
+    });
+}
+
+fn zero_growth(canvas: &mut Canvas, portrait: &Portrait) {
+    let [across, upwards] = &portrait.zero_growth;
+    for (cell, pair) in canvas.cells.iter_mut().zip(across.iter().zip(upwards)) {
+        *cell = match pair {
+            (true, true) => Mark::Growth(Growth::Both),
+            (true, false) => Mark::Growth(Growth::Across),
+            (false, true) => Mark::Growth(Growth::Upwards),
+            (false, false) => Mark::Blank,
+        };
+    }
+}
+
+/// Signs of directions wherever they fit between what is drawn already; those of two characters keep away from it.
+fn directions(
+    canvas: &mut Canvas,
+    style: Style,
+    rows: std::ops::Range<usize>,
+    direction: impl Fn(usize, usize) -> Option<Octant>,
+) {
+    let gap = usize::from(style == Style::Ascii);
+    for row in rows {
+        for column in (0..canvas.columns).step_by(spacing(style)) {
+            let Some(octant) = direction(column, row) else { continue };
+            let length = flow(octant, style).chars().count();
+            let around = column.saturating_sub(gap)..column + length + gap;
+            let is_free = around.into_iter().all(|c| matches!(canvas.at(c, row), Mark::Blank | Mark::Level));
+            if is_free && column + length <= canvas.columns {
+                (0..length).for_each(|part| canvas.put([column + part, row], Mark::Flow(octant, part)));
+            }
+        }
+    }
+}
+
+/// Both halves of a straight path, each with the tip of its arrow at the end that the state moves to.
+fn straight(canvas: &mut Canvas, frame: &Frame, middle: [f64; 2], line: &Straight) {
+    let seen = frame.seen(line.along);
+    let length = seen[0].hypot(seen[1]);
+    let smaller = frame.columns.min(2 * frame.rows) as f64;
+    let reach = (SHARE * smaller).clamp(REACH[0], REACH[1]);
+    for sign in [1.0, -1.0] {
+        let outwards = seen.map(|part| sign * part / length);
+        let Some(octant) = Octant::of(outwards) else { continue };
+        let cells = half(frame, middle, outwards, reach);
+        let tip = if line.approaches { 0 } else { cells.len().saturating_sub(1) };
+        let towards = if line.approaches { octant.opposite() } else { octant };
+        for (place, cell) in cells.into_iter().enumerate() {
+            canvas.put(cell, Mark::Straight(towards, place == tip));
+        }
+    }
+}
+
+/// The cells along one half of a straight path, from the equilibrium outwards, without its own.
+fn half(frame: &Frame, middle: [f64; 2], outwards: [f64; 2], reach: f64) -> Vec<[usize; 2]> {
+    let [x, y] = frame.unseen(outwards);
+    let far = (0..=nearest(2.0 * reach, frame.columns)).map(|step| step as f64 / 2.0);
+    let mut cells = course(far.filter_map(|far| frame.cell([middle[0] + far * x, middle[1] + far * y])));
+    cells.retain(|&cell| Some(cell) != frame.cell(middle));
+    cells
+}
+
+/// The cells that a line runs through, one to a step: where it goes around a corner by way of a cell between two that
+/// touch at their corners, that cell is left out.
+fn course(cells: impl Iterator<Item = [usize; 2]>) -> Vec<[usize; 2]> {
+    let touch = |a: [usize; 2], b: [usize; 2]| a[0].abs_diff(b[0]) <= 1 && a[1].abs_diff(b[1]) <= 1;
+    let mut course: Vec<[usize; 2]> = Vec::new();
+    for cell in cells {
+        if course.last() == Some(&cell) {
+            continue;
+        }
+        if let [.., before, _] = course[..]
+            && touch(before, cell)
+        {
+            course.pop();
+        }
+        course.push(cell);
+    }
+    course
+}
+
+/// The rate of a single species, and the level of 0.
+fn line(canvas: &mut Canvas, profile: &Profile) {
+    let frame = &profile.frame;
+    let row_of = |rate: f64| frame.cell([frame.window.x[0], rate]).map(|[_, row]| row);
+    let level = row_of(0.0);
+    let mut before: Option<usize> = None;
+    for (column, rate) in profile.rates.iter().enumerate() {
+        let row = rate.and_then(row_of);
+        if let Some(row) = row {
+            // A steep rate fills the rows between, half of them in each column.
+            let from = before.map_or(row, |before| (before + row).div_ceil(2));
+            (from.min(row)..=from.max(row)).for_each(|row| canvas.put([column, row], Mark::Rate));
+            if let Some(before) = before.filter(|&before| before.abs_diff(row) > 1) {
+                let to = usize::midpoint(before, row);
+                (before.min(to)..=before.max(to)).for_each(|row| canvas.put([column - 1, row], Mark::Rate));
+            }
+        }
+        before = row;
+    }
+    let Some(level) = level else { return };
+    for column in 0..frame.columns {
+        canvas.put([column, level], Mark::Level);
+    }
+}
+
+fn flow_on_line(canvas: &mut Canvas, profile: &Profile, style: Style) {
+    let frame = &profile.frame;
+    let Some([_, level]) = frame.cell([frame.window.x[0], 0.0]) else { return };
+    directions(canvas, style, level..level + 1, |column, _| {
+        profile.rates.get(column).copied().flatten().and_then(|rate| Octant::of([rate, 0.0]))
+    });
+}
+
+/// Today's stocks and the equilibria, the stable ones last, with their names where there is room.
+fn states(canvas: &mut Canvas, view: &View<'_>, frame: &Frame) {
+    if let Some(cell) = view.now().and_then(|now| frame.cell(now)) {
+        canvas.put(cell, Mark::Now);
+    }
+    let mut shown: Vec<(usize, [usize; 2])> =
+        view.in_slice().filter_map(|index| Some((index, frame.cell(view.place(index)?)?))).collect();
+    shown.sort_by_key(|&(index, _)| view.is_stable(index));
+    for &(index, cell) in &shown {
+        canvas.put(cell, Mark::State(view.look(index)));
+    }
+    // Names in the other order, so that the state on top of a cell has the first place.
+    let mut named: Vec<[usize; 2]> = Vec::new();
+    for &(index, cell) in shown.iter().rev() {
+        if !named.contains(&cell) {
+            named.push(cell);
+            name(canvas, cell, view.ids.get(index).map_or("", String::as_str));
+        }
+    }
+}
+
+/// Writes a name to the right of a cell, else to the left, else above or below; nowhere over a state or another name.
+fn name(canvas: &mut Canvas, [column, row]: [usize; 2], id: &str) {
+    let length = id.chars().count();
+    let beside = [Some(column + 1), column.checked_sub(length)].map(|start| (start, Some(row)));
+    let over = [row.checked_add(1), row.checked_sub(1)].map(|row| (Some(column), row));
+    let places = beside.into_iter().chain(over).filter_map(|(start, row)| Some([start?, row?]));
+    let is_free = |[start, row]: [usize; 2]| {
+        let is_taken = |c| matches!(canvas.at(c, row), Mark::State(_) | Mark::Now | Mark::Letter(_));
+        start + length <= canvas.columns && row < canvas.rows && !(start..start + length).any(is_taken)
+    };
+    let is_quiet = |&[start, row]: &[usize; 2]| {
+        let loud = |c| matches!(canvas.at(c, row), Mark::Straight(..) | Mark::Divide | Mark::Growth(_) | Mark::Rate);
+        !(start..start + length).any(loud)
+    };
+    let places: Vec<[usize; 2]> = places.filter(|&place| is_free(place)).collect();
+    let Some(&[start, row]) = places.iter().find(|place| is_quiet(place)).or(places.first()) else { return };
+    for (place, letter) in id.chars().enumerate() {
+        canvas.put([start + place, row], Mark::Letter(letter));
+    }
+}
