@@ -1,8 +1,9 @@
 //! What is shown of a model and its results, as text and as data; no terminal, no files.
 //!
 //! [`check`] says what was understood of a model file, [`table`] what equilibria its scenarios have, [`kinds`] how each kind
-//! of equilibrium is written.
+//! of equilibrium is written, `layout` breaks lines.
 
 pub mod check;
 pub mod kinds;
+mod layout;
 pub mod table;

@@ -1,4 +1,4 @@
-//! Lines of text: a grid that goes on below where it is too wide, and paragraphs that break between words.
+//! Lines of text: a grid that goes on below where it is too wide.
 //!
 //! Widths are those of a terminal (UAX #11). Colour is put on last, so that it takes no room.
 
@@ -170,24 +170,6 @@ fn one_line(cells: &[&Cell], page: &Page) -> String {
     format!("{}\n", line.trim_end())
 }
 
-/// Words of a text in lines that begin in column `indent`, the first of them after `first`, which must be shorter.
-pub(super) fn paragraph(first: &str, text: &str, indent: usize, width: usize) -> String {
-    let mut lines = format!("{first:indent$}");
-    let mut column = indent;
-    for (place, word) in text.split_whitespace().enumerate() {
-        if place > 0 && column + 1 + word.width() > width {
-            let _ = write!(lines, "\n{:indent$}", "");
-            column = indent;
-        } else if place > 0 {
-            lines.push(' ');
-            column += 1;
-        }
-        lines.push_str(word);
-        column += word.width();
-    }
-    lines + "\n"
-}
-
 #[cfg(test)]
 mod tests {
     use super::*;
@@ -216,12 +198,5 @@ mod tests {
         let rows = [["E1", "1", "2", "3"].map(Cell::new).to_vec()];
         assert_eq!(grid(&heads, &rows, &page(16)), "      aaaa  bbbb\n  E1  1     2\n\n      cccc\n  E1  3\n");
         assert_eq!(grid(&heads[..2], &rows, &page(0)), "      aaaa\n  E1  1\n");
-    }
-
-    #[test]
-    fn paragraphs_break_between_words() {
-        assert_eq!(paragraph("a", "bb cc dd", 3, 8), "a  bb cc\n   dd\n");
-        assert_eq!(paragraph("", "bbbbbbbbbb c", 2, 8), "  bbbbbbbbbb\n  c\n");
-        assert_eq!(paragraph("", "", 0, 8), "\n");
     }
 }

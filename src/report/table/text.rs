@@ -6,8 +6,9 @@ use crate::diag::cleanse::cleanse;
 use crate::diag::render::position;
 use crate::model::{Model, Scenario};
 
+use super::super::layout::paragraph;
 use super::columns::COLUMNS;
-use super::layout::{Cell, Head, Ink, grid, paragraph};
+use super::layout::{Cell, Head, Ink, grid};
 use super::number::{human, human_above, human_below};
 use super::{Row, Scene, Solved, Style, Table, words};
 
