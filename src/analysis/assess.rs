@@ -1,8 +1,10 @@
 //! All that is said of a scenario's equilibria once they are found.
 
-use super::linearise::{Linearisation, Unavailable};
-use super::measures::Measures;
-use super::paths::{Destination, FromNow};
+use super::equilibria::Equilibria;
+use super::linearise::{Linearisation, Lineariser, Unavailable};
+use super::measures::{Measures, Meter};
+use super::paths::{Destination, FromNow, from_now, is_unstable_coexistence, settles};
+use super::subject::Subject;
 
 /// What is said of one equilibrium.
 #[derive(Clone, Debug, PartialEq)]
@@ -22,4 +24,24 @@ pub struct Assessment {
     pub equilibria: Vec<Assessed>,
     /// Where today's stocks lead; `None` where the model file does not say where they stand.
     pub from_now: Option<FromNow>,
+}
+
+/// Linearises and measures every equilibrium, and follows the paths that the table tells of. Paths are no longer followed
+/// once `stop` says so.
+pub fn assess(subject: &mut Subject<'_>, equilibria: &Equilibria, stop: &dyn Fn() -> bool) -> Assessment {
+    let list = &equilibria.list;
+    let lineariser = Lineariser::new(subject);
+    let linear: Vec<_> = list.iter().map(|equilibrium| lineariser.at(equilibrium)).collect();
+    let meter = Meter::new(subject);
+    let parts: Vec<Option<&Linearisation>> = linear.iter().map(|linear| linear.as_ref().ok()).collect();
+    let measures: Vec<Measures> =
+        list.iter().zip(&parts).map(|(equilibrium, linear)| meter.measure(subject, equilibrium, *linear, stop)).collect();
+    let mut release = |which: usize| {
+        let unstable = parts[which].is_some_and(|linear| is_unstable_coexistence(subject, &list[which], linear));
+        unstable.then(|| settles(subject, list, &parts, which, stop))
+    };
+    let settles: Vec<Option<Destination>> = (0..list.len()).map(&mut release).collect();
+    let from_now = from_now(subject, list, &parts, stop);
+    let assessed = |((linear, measures), settles)| Assessed { linear, measures, settles };
+    Assessment { equilibria: linear.into_iter().zip(measures).zip(settles).map(assessed).collect(), from_now }
 }

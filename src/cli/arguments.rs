@@ -24,6 +24,8 @@ pub(super) struct Arguments {
     #[command(flatten)]
     pub(super) work: Work,
     #[command(flatten)]
+    pub(super) show: Show,
+    #[command(flatten)]
     pub(super) options: Options,
 }
 
@@ -46,13 +48,16 @@ pub(super) enum Command {
         /// Model file in YAML, or - for standard input
         model: PathBuf,
     },
-    /// Print every equilibrium of each scenario, and what is proved of it
-    #[command(after_help = "Equilibria are called E1, E2, ... and keep their names in all scenarios of one run.")]
+    /// Print every equilibrium of each scenario, what it is like, and what is proved of it
+    #[command(after_help = AFTER_TABLE)]
+    #[command(override_usage = "restpoint table [OPTIONS] <MODEL>\n       restpoint table --columns help")]
     Table {
         /// Model file in YAML, or - for standard input
-        model: PathBuf,
+        model: Option<PathBuf>,
         #[command(flatten)]
         work: Work,
+        #[command(flatten)]
+        show: Show,
     },
     /// Draw the direction field of each scenario, with its equilibria, in characters
     #[command(
@@ -74,6 +79,28 @@ pub(super) struct Sketch {
     pub(super) axes: Option<[String; 2]>,
     #[command(flatten)]
     pub(super) work: Work,
+}
+
+const AFTER_TABLE: &str = "\
+Equilibria are called E1, E2, ... and keep their names in all scenarios of one run.
+
+text, markdown and latex are for people: numbers rounded, columns that are empty left out. csv has one row
+for each equilibrium of each scenario, json the most; both have exact numbers. Every format says what is
+proved, what is numerical and what is undecided, and has what is needed to make the table again.";
+
+/// What is shown of the results.
+#[derive(Debug, Default, Args)]
+pub(super) struct Show {
+    /// Columns to show, with commas between; help lists them, all is every one [default: as the format needs]
+    #[arg(long, value_name = "LIST|help")]
+    pub(super) columns: Option<String>,
+}
+
+impl Show {
+    /// Whether it was asked what columns there are.
+    pub(super) fn is_help(&self) -> bool {
+        self.columns.as_deref().is_some_and(|list| list.trim() == "help")
+    }
 }
 
 /// What is to be solved, and at what cost.
@@ -153,7 +180,7 @@ fn seconds(text: &str) -> Result<f64, String> {
 /// Options that every command takes.
 #[derive(Debug, Args)]
 pub(super) struct Options {
-    /// How to write the result
+    /// How to write the result; check knows text and json
     #[arg(long, global = true, value_enum, default_value = "text")]
     pub(super) format: Format,
     /// Write the result to this file, whole or not at all
@@ -175,8 +202,27 @@ pub(super) struct Options {
 pub(super) enum Format {
     /// For reading
     Text,
+    /// For spreadsheets and statistics: one row an equilibrium and scenario
+    Csv,
+    /// For reports and wikis
+    Markdown,
     /// For programs
     Json,
+    /// For reports: booktabs tables to be taken in by \input
+    Latex,
+}
+
+impl Format {
+    /// As it is typed.
+    pub(super) fn word(self) -> &'static str {
+        match self {
+            Format::Text => "text",
+            Format::Csv => "csv",
+            Format::Markdown => "markdown",
+            Format::Json => "json",
+            Format::Latex => "latex",
+        }
+    }
 }
 
 /// When colour is used.

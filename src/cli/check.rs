@@ -17,6 +17,13 @@ use super::{Exit, Outcome};
 
 /// Reads the model at `path`, or the one compiled in, and says what was understood.
 pub(super) fn check(path: Option<&Path>, options: &Options, color: bool) -> Outcome {
+    if !matches!(options.format, Format::Text | Format::Json) {
+        let word = options.format.word();
+        return Outcome::only(
+            format!("error: check writes text or json, not {word}; table writes {word}\n"),
+            Exit::Usage,
+        );
+    }
     match read(path) {
         Reading::Unreadable(reason) => Outcome::only(reason, Exit::Fault),
         Reading::Wrong(sources, found) => wrong(&found, &sources, options, color),
@@ -41,8 +48,8 @@ fn understood(model: &Model, options: &Options, color: bool) -> Outcome {
     warnings.sort_by_key(|warning| warning.at);
     let subject = Subject { model, units: &units, bounds: bounds.as_deref(), warnings: &warnings };
     let result = match options.format {
-        Format::Text => report_text(&subject, if options.ascii { Style::Ascii } else { Style::Unicode }),
         Format::Json => pretty(&with_errors(report_json(&subject), &missing, &model.sources), options),
+        _ => report_text(&subject, if options.ascii { Style::Ascii } else { Style::Unicode }),
     };
     let exit = if missing.is_empty() { Exit::Done } else { Exit::Fault };
     Outcome { result, remarks: remarks(&missing, &model.sources, color), exit }

@@ -109,17 +109,29 @@ fn perform(arguments: &Arguments, screen: Screen) -> Outcome {
     let options = &arguments.options;
     match &arguments.command {
         Some(Command::Check { model }) => check::check(Some(model), options, screen.color_remarks),
-        Some(Command::Table { model, work }) => table::table(Some(model), work, options, screen),
+        Some(Command::Table { show, .. }) if show.is_help() => table::columns(options),
+        Some(Command::Table { model: None, .. }) => Outcome::only(NO_MODEL.to_owned(), Exit::Usage),
+        Some(Command::Table { model, work, show }) => table::table(model.as_deref(), work, show, options, screen),
         Some(Command::Sketch(asked)) => sketch::sketch(asked, options, screen),
-        None => table::table(arguments.model.as_deref(), &arguments.work, options, screen),
+        None if arguments.show.is_help() => table::columns(options),
+        None => table::table(arguments.model.as_deref(), &arguments.work, &arguments.show, options, screen),
     }
 }
+
+const NO_MODEL: &str = "\
+error: a model is needed
+
+Usage: restpoint table [OPTIONS] <MODEL>
+
+For more information, try '--help'.
+";
 
 /// What stands before a command that belongs after it, and would have no effect there.
 fn misplaced(arguments: &Arguments) -> Option<(Exit, String)> {
     arguments.command.as_ref()?;
     let before = match &arguments.model {
         Some(model) => Some(model.display().to_string()),
+        None if arguments.show.columns.is_some() => Some("--columns".to_owned()),
         None => arguments.work.given().map(str::to_owned),
     };
     before.map(|what| (Exit::Usage, format!("{what} belongs after the command, not before it")))

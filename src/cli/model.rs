@@ -4,6 +4,7 @@ use std::path::Path;
 
 use serde_json::{Value, json};
 
+use crate::diag::cleanse::is_hostile;
 use crate::diag::render::{position, render};
 use crate::diag::{Diagnostic, Severity, Sources};
 use crate::model::Model;
@@ -64,8 +65,8 @@ fn reading(
 /// A model that cannot be used: the messages for a reader, and for a program where one is asked for.
 pub(super) fn wrong(found: &[Diagnostic], sources: &Sources, options: &Options, color: bool) -> Outcome {
     let result = match options.format {
-        Format::Text => String::new(),
         Format::Json => pretty(&json!({ "errors": errors(found, sources) }), options),
+        Format::Text | Format::Csv | Format::Markdown | Format::Latex => String::new(),
     };
     Outcome { result, remarks: remarks(found, sources, color), exit: Exit::Fault }
 }
@@ -96,20 +97,22 @@ pub(super) fn remarks(found: &[Diagnostic], sources: &Sources, color: bool) -> S
     text.join("\n")
 }
 
-/// JSON that ends in a line break, in ASCII where asked for.
+/// JSON that ends in a line break, harmless to a terminal, and in ASCII where asked for.
 pub(super) fn pretty(value: &Value, options: &Options) -> String {
     let text = format!("{value:#}\n");
-    if !options.ascii || text.is_ascii() {
+    // Line breaks between the lines are the only control characters that stand for themselves.
+    let is_escaped = |c: char| (options.ascii && !c.is_ascii()) || (is_hostile(c) && c != '\n');
+    if !text.contains(is_escaped) {
         return text;
     }
-    let mut ascii = String::with_capacity(text.len() + 64);
+    let mut escaped = String::with_capacity(text.len() + 64);
     for c in text.chars() {
-        // Only strings hold anything else, and there every character may be written as its UTF-16 units.
-        if c.is_ascii() {
-            ascii.push(c);
+        // Only strings hold such characters, and there every one may be written as its UTF-16 units.
+        if is_escaped(c) {
+            escaped.extend(c.encode_utf16(&mut [0; 2]).iter().map(|unit| format!("\\u{unit:04x}")));
         } else {
-            ascii.extend(c.encode_utf16(&mut [0; 2]).iter().map(|unit| format!("\\u{unit:04x}")));
+            escaped.push(c);
         }
     }
-    ascii
+    escaped
 }

@@ -1,7 +1,8 @@
 //! A model's scenarios made ready and searched, for every command that needs their equilibria.
 
-use crate::analysis::assess::Assessment;
-use crate::analysis::equilibria::{Budget, Problem, all, balance};
+use crate::analysis::assess::assess;
+use crate::analysis::equilibria::{Budget, all};
+use crate::analysis::subject::Subject;
 use crate::diag::Diagnostic;
 use crate::model::system::System;
 use crate::model::system::bounds::Bound;
@@ -76,9 +77,6 @@ impl Solver<'_> {
     fn solve(&self, plan: usize) -> Solved {
         let System { graph, plans } = &self.prepared.system;
         let plan = &plans[plan];
-        // A graph of its own for each scenario, so that no result hangs on which others were asked for.
-        let graph = &mut graph.clone();
-        let rows = balance(graph, &plan.rows, &self.model.time);
         let sides: Vec<[f64; 2]> = self.prepared.bounds.iter().map(|bound| [bound.lower, bound.upper]).collect();
         let deadline = Deadline::after(self.limits.seconds);
         let meter = Meter::start();
@@ -88,7 +86,10 @@ impl Solver<'_> {
             workers: &self.threads,
             observer: Some(&|done| meter.add(done)),
         };
-        let equilibria = all(graph, &Problem { rows: &rows, values: &plan.values, sides: &sides }, &budget);
-        Solved { values: plan.values.clone(), equilibria, assessment: Assessment::default() }
+        let mut subject = Subject::new(self.model, graph, plan, sides);
+        let (graph, problem) = subject.problem();
+        let equilibria = all(graph, &problem, &budget);
+        let assessment = assess(&mut subject, &equilibria, budget.stop);
+        Solved { values: plan.values.clone(), equilibria, assessment }
     }
 }

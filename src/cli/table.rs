@@ -5,18 +5,33 @@ use std::path::Path;
 use crate::diag::Diagnostic;
 use crate::diag::cleanse::cleanse;
 use crate::model::Model;
-use crate::report::table::{Limits, Page, Scene, Solved, Style, Table, json, text};
+use crate::report::table::{
+    Limits, Page, Scene, Selection, Solved, Style, Table, UnknownColumn, csv, guide, json, latex, markdown, text,
+};
 use crate::shell::signal::Interrupt;
 use crate::shell::workers::Threads;
 
-use super::arguments::{BUDGET, Format, Options, Work};
+use super::arguments::{BUDGET, Format, Options, Show, Work};
 use super::choice::Choice;
 use super::model::{Original, Reading, pretty, read, remarks, wrong};
 use super::solve::{BOXES, Prepared, Solver};
 use super::{Exit, Outcome, Screen};
 
+/// Says what columns there are.
+pub(super) fn columns(options: &Options) -> Outcome {
+    if options.format == Format::Text {
+        Outcome { result: guide(), remarks: String::new(), exit: Exit::Done }
+    } else {
+        Outcome::only("error: --columns help is text\n".to_owned(), Exit::Usage)
+    }
+}
+
 /// Finds and shows the equilibria of the model at `path`, or of the one compiled in.
-pub(super) fn table(path: Option<&Path>, work: &Work, options: &Options, screen: Screen) -> Outcome {
+pub(super) fn table(path: Option<&Path>, work: &Work, show: &Show, options: &Options, screen: Screen) -> Outcome {
+    let selection = match show.columns.as_deref().map(Selection::read).transpose() {
+        Ok(selection) => selection,
+        Err(unknown) => return Outcome::only(no_such_column(&unknown), Exit::Usage),
+    };
     let original = match read(path) {
         Reading::Unreadable(reason) => return Outcome::only(reason, Exit::Fault),
         Reading::Wrong(sources, found) => return wrong(&found, &sources, options, screen.color_remarks),
@@ -36,7 +51,7 @@ pub(super) fn table(path: Option<&Path>, work: &Work, options: &Options, screen:
     let threads = work.threads.map_or_else(Threads::available, |count| Threads::new(count.into()));
     let solver = Solver { model, prepared: &prepared, limits, threads, interrupt: &interrupt };
     let scenes: Vec<Scene> = choice.scenarios.iter().map(|&scenario| solver.scene(scenario)).collect();
-    let command = command(path, work, options, &choice, model);
+    let command = command(path, work, show, options, &choice, model);
     let table = Table {
         model,
         sha256: &original.sha256,
@@ -47,15 +62,20 @@ pub(super) fn table(path: Option<&Path>, work: &Work, options: &Options, screen:
         limits,
         scenes: &scenes,
         interrupted: interrupt.is_raised(),
+        columns: selection.as_ref(),
     };
     present(&table, &original, work, options, screen)
 }
 
 fn present(table: &Table<'_>, original: &Original, work: &Work, options: &Options, screen: Screen) -> Outcome {
     let style = if options.ascii { Style::Ascii } else { Style::Unicode };
+    let page = Page { width: screen.width, style, color: screen.color };
     let result = match options.format {
-        Format::Text => text(table, Page { width: screen.width, style, color: screen.color }),
+        Format::Text => text(table, page),
+        Format::Csv => csv(table, style),
+        Format::Markdown => markdown(table, page),
         Format::Json => pretty(&json(table), options),
+        Format::Latex => latex(table, page),
     };
     let problems = table.scenes.iter().filter_map(|scene| scene.outcome.as_ref().err());
     let failed: Vec<Diagnostic> = problems.flatten().cloned().collect();
@@ -72,8 +92,16 @@ fn present(table: &Table<'_>, original: &Original, work: &Work, options: &Option
     Outcome { result, remarks: remarks(&failed, &original.model.sources, screen.color_remarks), exit }
 }
 
+fn no_such_column(unknown: &UnknownColumn) -> String {
+    let meant = unknown.nearest.map_or_else(
+        || "; --columns help lists them".to_owned(),
+        |near| format!("; did you mean \"{near}\"? --columns help lists them"),
+    );
+    format!("error: no column is called \"{}\"{meant}\n", cleanse(&unknown.id))
+}
+
 /// The command that makes the table, without the options that make no difference to it.
-fn command(path: Option<&Path>, work: &Work, options: &Options, choice: &Choice, model: &Model) -> String {
+fn command(path: Option<&Path>, work: &Work, show: &Show, options: &Options, choice: &Choice, model: &Model) -> String {
     let mut words: Vec<String> = vec!["restpoint".to_owned()];
     if let Some(path) = path {
         words.extend(["table".to_owned(), quoted(&path.to_string_lossy())]);
@@ -89,8 +117,11 @@ fn command(path: Option<&Path>, work: &Work, options: &Options, choice: &Choice,
     if let Some(seconds) = work.budget {
         words.extend(["--budget".to_owned(), seconds.to_string()]);
     }
-    if options.format == Format::Json {
-        words.extend(["--format".to_owned(), "json".to_owned()]);
+    if let Some(list) = &show.columns {
+        words.extend(["--columns".to_owned(), quoted(list)]);
+    }
+    if options.format != Format::Text {
+        words.extend(["--format".to_owned(), options.format.word().to_owned()]);
     }
     words.join(" ")
 }

@@ -4,8 +4,15 @@
 
 use unicode_width::UnicodeWidthStr;
 
+use super::super::layout;
+
 /// Width that every text of this report keeps to where its words allow.
 pub(super) const WIDTH: usize = 80;
+
+/// Words within [`WIDTH`], from column `start` on; further lines are indented by `indent`.
+pub(super) fn wrapped<'w>(words: impl IntoIterator<Item = &'w str>, start: usize, indent: usize) -> String {
+    layout::wrapped(words, start, indent, WIDTH)
+}
 
 /// A last column that begins further right than this has lines of its own for what does not fit.
 const FARTHEST: usize = 44;
@@ -59,25 +66,6 @@ pub(super) fn headed(headings: &[&str], rows: &[Vec<String>]) -> String {
     columns(&all)
 }
 
-/// Words with a space between, from column `start` on; further lines are indented by `indent`.
-pub(super) fn wrapped<'w>(words: impl IntoIterator<Item = &'w str>, start: usize, indent: usize) -> String {
-    let mut text = String::new();
-    let mut column = start;
-    for (place, word) in words.into_iter().enumerate() {
-        if place > 0 && column + 1 + word.width() > WIDTH {
-            text.push('\n');
-            text.push_str(&" ".repeat(indent));
-            column = indent;
-        } else if place > 0 {
-            text.push(' ');
-            column += 1;
-        }
-        text.push_str(word);
-        column += word.width();
-    }
-    text
-}
-
 #[cfg(test)]
 mod tests {
     use super::*;
@@ -89,13 +77,5 @@ mod tests {
             vec!["αβ".to_owned(), String::new(), "1".to_owned()],
         ];
         assert_eq!(columns(&rows), "  K   900\n  αβ  1\n");
-    }
-
-    #[test]
-    fn lines_break_between_words() {
-        let long = "x".repeat(50);
-        assert_eq!(wrapped([long.as_str(), long.as_str()], 4, 2), format!("{long}\n  {long}"));
-        assert_eq!(wrapped(["a", "b"], 77, 2), "a b");
-        assert_eq!(wrapped(["a", "b"], 78, 2), "a\n  b");
     }
 }

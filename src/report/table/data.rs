@@ -8,8 +8,9 @@ use crate::diag::render::position;
 use crate::model::{ParameterId, Scenario, TimeKind};
 use crate::num::interval::Interval;
 
-use super::columns::{COLUMNS, exact};
-use super::{Row, Scene, Solved, Table, words};
+use super::columns::{Column, Shown};
+use super::scene::name as scenario_name;
+use super::{Row, Scene, Solved, Table, exact, paths, words};
 
 /// The table as a JSON object.
 pub fn json(table: &Table<'_>) -> Value {
@@ -24,7 +25,7 @@ pub fn json(table: &Table<'_>) -> Value {
         "scenarios": scenarios.collect::<Vec<_>>(),
         "run": {
             "command": table.command,
-            "set": table.set.iter().map(|&(id, value)| (name(table, id), exact(value))).collect::<Map<_, _>>(),
+            "set": table.set.iter().map(|&(id, value)| (table.parameter(id), exact(value))).collect::<Map<_, _>>(),
             "budget": {"seconds": table.limits.seconds, "boxes": table.limits.boxes},
             "interrupted": table.interrupted,
         },
@@ -48,8 +49,12 @@ fn model(table: &Table<'_>) -> Value {
 fn scenario(table: &Table<'_>, scene: &Scene, solved: &Solved, ids: &[String]) -> Value {
     let values = table.model.parameters.iter().zip(&solved.values);
     let unresolved: Vec<Value> = solved.equilibria.unresolved.iter().map(|one| self::unresolved(table, one)).collect();
+    let place = paths::Place { table, scenario: scene.scenario, ids };
+    let from_now = solved.assessment.from_now.as_ref().map(|from| paths::from_now(place, from));
+    let columns = table.columns(&[Shown::Everywhere, Shown::Files, Shown::Json]);
+    let equilibria: Vec<Value> = table.rows(scene, solved, ids).iter().map(|row| equilibrium(&columns, row)).collect();
     json!({
-        "name": scenario_name(table, scene),
+        "name": scenario_name(table.model, scene),
         "parameters": values.map(|(parameter, &value)| (parameter.name.clone(), exact(value))).collect::<Map<_, _>>(),
         "search": {
             "box": search_box(table),
@@ -57,7 +62,8 @@ fn scenario(table: &Table<'_>, scene: &Scene, solved: &Solved, ids: &[String]) -
             "beyond": words::beyond(&solved.equilibria),
             "unresolved": unresolved,
         },
-        "equilibria": table.rows(solved, ids).iter().map(equilibrium).collect::<Vec<_>>(),
+        "from_now": from_now,
+        "equilibria": equilibria,
         "overlay": table.model.scenarios.get(scene.scenario).map(|scenario| overlay(table, scenario, solved)),
     })
 }
@@ -67,9 +73,16 @@ fn search_box(table: &Table<'_>) -> Value {
     Value::Object(sides.map(|(species, side)| (species.symbol.clone(), pair(side.lower, side.upper))).collect())
 }
 
-fn equilibrium(row: &Row<'_>) -> Value {
-    let entries = COLUMNS.iter().flat_map(|column| (column.exact)(row));
-    Value::Object(entries.map(|(key, value)| (key.to_owned(), value)).collect())
+fn equilibrium(columns: &[&Column], row: &Row<'_>) -> Value {
+    let mut entries: Map<String, Value> = Map::new();
+    for key in columns.iter().flat_map(|column| column.keys) {
+        let value = key.get.value(row);
+        // There is a reason only where something is missing.
+        if key.name != "why" || !value.is_null() {
+            entries.insert(key.name.to_owned(), value);
+        }
+    }
+    Value::Object(entries)
 }
 
 fn unresolved(table: &Table<'_>, one: &Unresolved) -> Value {
@@ -92,7 +105,7 @@ fn pair(low: f64, high: f64) -> Value {
 }
 
 fn overlay(table: &Table<'_>, scenario: &Scenario, solved: &Solved) -> Value {
-    let value = |id: ParameterId| (name(table, id), solved.values.get(id.0).map_or(Value::Null, |&x| exact(x)));
+    let value = |id: ParameterId| (table.parameter(id), solved.values.get(id.0).map_or(Value::Null, |&x| exact(x)));
     let names = |names: &mut dyn Iterator<Item = &String>| names.cloned().collect::<Vec<_>>();
     json!({
         "values": scenario.values.iter().map(|&(id, _)| value(id)).collect::<Map<_, _>>(),
@@ -108,13 +121,5 @@ fn failed(table: &Table<'_>, scene: &Scene, problems: &[Diagnostic]) -> Value {
         let (file, line, column) = position(&table.model.sources, problem.at);
         json!({"file": file, "line": line, "column": column, "message": problem.message})
     });
-    json!({"name": scenario_name(table, scene), "error": error})
-}
-
-fn scenario_name<'t>(table: &Table<'t>, scene: &Scene) -> &'t str {
-    table.model.scenarios.get(scene.scenario).map_or("", |scenario| &scenario.name)
-}
-
-fn name(table: &Table<'_>, id: ParameterId) -> String {
-    table.model.parameters.get(id.0).map_or_else(String::new, |parameter| parameter.name.clone())
+    json!({"name": scenario_name(table.model, scene), "error": error})
 }

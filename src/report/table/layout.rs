@@ -1,4 +1,4 @@
-//! Lines of text: a grid that goes on below where it is too wide, and paragraphs that break between words.
+//! Lines of text: a grid that goes on below where it is too wide.
 //!
 //! Widths are those of a terminal (UAX #11). Colour is put on last, so that it takes no room.
 
@@ -6,10 +6,16 @@ use std::fmt::Write as _;
 
 use unicode_width::UnicodeWidthStr;
 
+use super::super::layout::wrapped;
 use super::text::Page;
 
 /// Columns are this far apart.
 const GAP: usize = 2;
+
+/// Headings break between words beyond the width of what is below them, or this.
+const NARROW: usize = 8;
+/// Longer words of headings are broken, or a name could make a column as wide as a page.
+const LONGEST: usize = 24;
 
 /// What a colour repeats; it never says anything alone.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -29,6 +35,11 @@ impl Ink {
             Ink::Numerical => Some(33),
             Ink::Undecided => Some(35),
         }
+    }
+
+    /// The ink of what is proved, or only computed.
+    pub(super) fn of(proven: bool) -> Self {
+        if proven { Ink::Proved } else { Ink::Numerical }
     }
 
     /// The text in this ink, where colour is wanted.
@@ -55,6 +66,11 @@ impl Cell {
     pub(super) fn inked(text: impl Into<String>, ink: Ink) -> Self {
         Self { text: text.into(), ink }
     }
+
+    /// What is to be read there.
+    pub(super) fn text(&self) -> &str {
+        &self.text
+    }
 }
 
 /// How the cells of a column line up.
@@ -79,7 +95,13 @@ impl Head {
     }
 }
 
-/// A column whose cells all have the same width, headings first.
+/// The columns that are not empty in every row.
+pub(super) fn filled(heads: &[Head], rows: &[Vec<Cell>]) -> Vec<usize> {
+    let is_filled = |column: &usize| rows.iter().any(|row| row.get(*column).is_some_and(|cell| !cell.text.is_empty()));
+    (0..heads.len()).filter(is_filled).collect()
+}
+
+/// A column whose cells all have the same width: lines of headings first, then a line for each row.
 struct Block {
     width: usize,
     cells: Vec<Cell>,
@@ -88,52 +110,87 @@ struct Block {
 /// A grid. Columns that are empty in every row are left out; what does not fit the page goes on below, where the first
 /// column is repeated.
 pub(super) fn grid(heads: &[Head], rows: &[Vec<Cell>], page: &Page) -> String {
-    let blocks: Vec<Block> = (0..heads.len()).filter_map(|column| block(&heads[column], rows, column, page)).collect();
-    let Some((first, others)) = blocks.split_first() else { return String::new() };
+    let columns: Vec<Column> =
+        filled(heads, rows).into_iter().map(|place| Column::new(&heads[place], rows, place, page)).collect();
+    let most = columns.iter().map(|column| column.title.len()).max().unwrap_or(0);
+    let blocks: Vec<Block> = columns.into_iter().map(|column| column.block(most)).collect();
     let mut text = String::new();
-    let mut left = others;
-    loop {
-        let fitting = fitting(first.width, left, page.width);
-        let (here, rest) = left.split_at(fitting);
-        let shown: Vec<&Block> = std::iter::once(first).chain(here).collect();
-        text.push_str(&lines(&shown, page));
-        if rest.is_empty() {
-            return text;
+    for (place, part) in
+        parts(&blocks.iter().map(|block| block.width).collect::<Vec<_>>(), page.width).iter().enumerate()
+    {
+        if place > 0 {
+            text.push('\n');
         }
-        text.push('\n');
-        left = rest;
+        text.push_str(&lines(&part.iter().filter_map(|&block| blocks.get(block)).collect::<Vec<_>>(), page));
     }
+    text
 }
 
-/// How many of the blocks fit beside the first; one at least, or a column wider than the page would never be shown.
-fn fitting(first: usize, blocks: &[Block], width: usize) -> usize {
+/// Columns of these widths divided among parts that fit a width; the first column is in every part.
+///
+/// Each part has one more column at least, or one wider than the page would never be shown.
+pub(super) fn parts(widths: &[usize], width: usize) -> Vec<Vec<usize>> {
+    let Some((first, others)) = widths.split_first() else { return Vec::new() };
+    let mut all = vec![vec![0]];
     let mut end = GAP + first;
-    let beside = blocks.iter().take_while(|block| {
-        end += GAP + block.width;
-        end <= width
-    });
-    beside.count().max(1).min(blocks.len())
+    for (place, other) in others.iter().enumerate() {
+        let is_full = all.last().is_some_and(|part| part.len() > 1) && end + GAP + other > width;
+        if is_full {
+            all.push(vec![0]);
+            end = GAP + first;
+        }
+        end += GAP + other;
+        if let Some(part) = all.last_mut() {
+            part.push(place + 1);
+        }
+    }
+    all
 }
 
-fn block(head: &Head, rows: &[Vec<Cell>], column: usize, page: &Page) -> Option<Block> {
-    let clean = |cell: &Cell| Cell { text: page.clean(&cell.text), ink: cell.ink };
-    let cells: Vec<Cell> = rows.iter().filter_map(|row| row.get(column)).map(clean).collect();
-    if cells.iter().all(|cell| cell.text.is_empty()) {
-        return None;
+/// A column before its cells have one width.
+struct Column {
+    title: Vec<String>,
+    unit: String,
+    align: Align,
+    body: Vec<Cell>,
+}
+
+impl Column {
+    fn new(head: &Head, rows: &[Vec<Cell>], column: usize, page: &Page) -> Self {
+        let clean = |cell: &Cell| Cell { text: page.clean(&cell.text), ink: cell.ink };
+        let cells: Vec<Cell> = rows.iter().filter_map(|row| row.get(column)).map(clean).collect();
+        let body = match head.align {
+            Align::Left => cells,
+            Align::Point => by_point(cells),
+        };
+        let unit = page.clean(&head.unit);
+        let widest = body.iter().map(|cell| cell.text.width()).chain([unit.width(), NARROW]).max().unwrap_or(0);
+        let words: Vec<String> = page.clean(&head.title).split_whitespace().flat_map(pieces).collect();
+        let title = wrapped(words.iter().map(String::as_str), 0, 0, widest);
+        Self { title: title.lines().map(str::to_owned).collect(), unit, align: head.align, body }
     }
-    let heads = [Cell::new(page.clean(&head.title)), Cell::new(page.clean(&head.unit))];
-    let body = match head.align {
-        Align::Left => cells,
-        Align::Point => by_point(cells),
-    };
-    let mut cells: Vec<Cell> = heads.into_iter().chain(body).collect();
-    let width = cells.iter().map(|cell| cell.text.width()).max().unwrap_or(0);
-    for cell in &mut cells {
-        let room = " ".repeat(width - cell.text.width());
-        cell.text =
-            if head.align == Align::Left { format!("{}{room}", cell.text) } else { format!("{room}{}", cell.text) };
+
+    /// Its lines, with this many for the title, filled from below.
+    fn block(self, most: usize) -> Block {
+        let above = vec![String::new(); most - self.title.len()];
+        let heads = above.into_iter().chain(self.title).chain([self.unit]).map(Cell::new);
+        let mut cells: Vec<Cell> = heads.chain(self.body).collect();
+        let width = cells.iter().map(|cell| cell.text.width()).max().unwrap_or(0);
+        for cell in &mut cells {
+            let room = " ".repeat(width - cell.text.width());
+            cell.text = match self.align {
+                Align::Left => format!("{}{room}", cell.text),
+                Align::Point => format!("{room}{}", cell.text),
+            };
+        }
+        Block { width, cells }
     }
-    Some(Block { width, cells })
+}
+
+/// A word in pieces of bearable length.
+fn pieces(word: &str) -> Vec<String> {
+    let letters: Vec<char> = word.chars().collect();
+    letters.chunks(LONGEST).map(|piece| piece.iter().collect()).collect()
 }
 
 /// Numbers filled up on the right so that their points are below each other once they end in the same column.
@@ -153,7 +210,7 @@ fn lines(blocks: &[&Block], page: &Page) -> String {
     for line in 0..count {
         let cells: Vec<&Cell> = blocks.iter().filter_map(|block| block.cells.get(line)).collect();
         let is_blank = cells.iter().all(|cell| cell.text.trim().is_empty());
-        // The two lines of headings may be blank; a row never is.
+        // Lines of headings may be blank; a row never is.
         if !is_blank {
             text.push_str(&one_line(&cells, page));
         }
@@ -168,24 +225,6 @@ fn one_line(cells: &[&Cell], page: &Page) -> String {
         let _ = write!(line, "{:GAP$}{}{room}", "", cell.ink.paint(word, page));
     }
     format!("{}\n", line.trim_end())
-}
-
-/// Words of a text in lines that begin in column `indent`, the first of them after `first`, which must be shorter.
-pub(super) fn paragraph(first: &str, text: &str, indent: usize, width: usize) -> String {
-    let mut lines = format!("{first:indent$}");
-    let mut column = indent;
-    for (place, word) in text.split_whitespace().enumerate() {
-        if place > 0 && column + 1 + word.width() > width {
-            let _ = write!(lines, "\n{:indent$}", "");
-            column = indent;
-        } else if place > 0 {
-            lines.push(' ');
-            column += 1;
-        }
-        lines.push_str(word);
-        column += word.width();
-    }
-    lines + "\n"
 }
 
 #[cfg(test)]
@@ -216,12 +255,5 @@ mod tests {
         let rows = [["E1", "1", "2", "3"].map(Cell::new).to_vec()];
         assert_eq!(grid(&heads, &rows, &page(16)), "      aaaa  bbbb\n  E1  1     2\n\n      cccc\n  E1  3\n");
         assert_eq!(grid(&heads[..2], &rows, &page(0)), "      aaaa\n  E1  1\n");
-    }
-
-    #[test]
-    fn paragraphs_break_between_words() {
-        assert_eq!(paragraph("a", "bb cc dd", 3, 8), "a  bb cc\n   dd\n");
-        assert_eq!(paragraph("", "bbbbbbbbbb c", 2, 8), "  bbbbbbbbbb\n  c\n");
-        assert_eq!(paragraph("", "", 0, 8), "\n");
     }
 }

@@ -1,39 +1,63 @@
-//! `restpoint table`: the equilibria of each scenario, for a reader and for a program.
+//! `restpoint table`: the equilibria of each scenario, for a reader, a report, a spreadsheet and a program.
 //!
-//! [`text()`] is for reading: as wide as it is told, in ASCII and without colour if asked, what is proved told from what is
-//! not by a word on every line. [`json`] is the same as data, in the keys of the contract. Both only present what a
-//! [`Table`] holds, and both go through the one list of [`COLUMNS`]: to show something more of an equilibrium, add a
-//! column there. `identity` names equilibria, `number` rounds, `words` has what both formats say, `layout` makes lines.
+//! [`text()`] is for reading: as wide as it is told, in ASCII and without colour if asked. [`markdown()`] and [`latex`] are
+//! for reports, [`csv()`] for spreadsheets and statistics, [`json`] for programs, with the keys of the contract. All only
+//! present what a [`Table`] holds, and all go through the one list of [`COLUMNS`]: to show something more of an
+//! equilibrium, add a column there. Numbers are rounded for people and exact in files; what is proved is told from what is
+//! not by words, in every format; every format carries what is needed to make the table again, and the caution.
+//!
+//! `identity` names equilibria, `number` rounds, `words` and `scene` have what all formats say, `paths` says where paths
+//! go, `provenance` what the table is of, `layout` makes lines, `guide` explains the columns.
 //!
 //! The JSON has the contract's keys in the contract's order, and some of its own after them:
 //!
 //! - in `model`: `tables`, the tables that the model file names, `{"file", "sha256"}` each, where there are any
+//! - in `from_now`: `starts`, how many starts the shares rest on; `cycle`, as in `settles`, where one is reached
+//! - in an equilibrium: the columns of `columns::own`
 //! - in a scenario: `overlay`, what it changes, `{"values": {name: number}, "without": […], "harvest": […], "processes":
 //!   […]}`
 //! - at the end: `run`, `{"command", "set": {name: number}, "budget": {"seconds", "boxes"}, "interrupted"}`; `caution`
 
 mod columns;
+mod csv;
 mod data;
+mod guide;
 mod identity;
+mod latex;
 mod layout;
+mod markdown;
 mod number;
+mod paths;
+mod provenance;
+mod scene;
+mod selection;
+mod sheet;
 mod text;
 mod words;
 
-pub use columns::{COLUMNS, Column};
+pub use columns::{COLUMNS, Column, Shown, Unit, columns};
+pub use csv::csv;
 pub use data::json;
+pub use guide::guide;
 pub use identity::identify;
+pub use latex::latex;
+pub use markdown::markdown;
 pub use number::{bound, human, human_above, human_below};
+pub use selection::{Selection, UnknownColumn};
 pub use text::{Page, failed, text};
 pub(super) use words::CAUTION;
 
 pub use super::check::Style;
 
-use crate::analysis::assess::Assessment;
+use serde_json::Value;
+
+use crate::analysis::assess::{Assessed, Assessment};
 use crate::analysis::equilibria::{Equilibria, Equilibrium};
+use crate::analysis::linearise::{Linearisation, Unavailable};
+use crate::analysis::measures::Measures;
 use crate::diag::Diagnostic;
 use crate::model::system::bounds::Bound;
-use crate::model::{Model, ParameterId};
+use crate::model::{Harvest, Model, ParameterId, TimeKind};
 
 /// What a table is of, and all that is needed to make it again.
 #[derive(Clone, Copy, Debug)]
@@ -56,6 +80,8 @@ pub struct Table<'t> {
     pub scenes: &'t [Scene],
     /// Whether the search was broken off from outside.
     pub interrupted: bool,
+    /// The columns asked for; without, each format shows what it shows by default.
+    pub columns: Option<&'t Selection>,
 }
 
 /// How much work the search of one scenario may take.
@@ -88,10 +114,24 @@ pub struct Solved {
 }
 
 impl Solved {
-    /// Whether everything shown of it is proved: each equilibrium, and that there are no others in the box.
+    /// Whether everything shown of it is proved: each equilibrium, that there are no others in the box, and what is said
+    /// of types, stability and the nonlinear terms. Measures and paths are numbers, with no claim that would be proved.
     pub fn is_proved(&self) -> bool {
         let Equilibria { complete, unresolved, list, .. } = &self.equilibria;
-        *complete && unresolved.is_empty() && list.iter().all(|equilibrium| equilibrium.proven)
+        let is_found = *complete && unresolved.is_empty() && list.iter().all(|equilibrium| equilibrium.proven);
+        is_found && self.assessment.equilibria.iter().all(|assessed| is_classified(&assessed.linear))
+    }
+}
+
+/// Whether what is said of a linear part is proved; that there is none where the rates have no derivative is.
+fn is_classified(linear: &Result<Linearisation, Unavailable>) -> bool {
+    match linear {
+        Ok(linear) => {
+            let nonlinear = linear.nonlinear.is_none_or(|nonlinear| nonlinear.proven);
+            linear.kind_proven && linear.stable_proven && nonlinear
+        }
+        Err(Unavailable::NoDerivative(_)) => true,
+        Err(Unavailable::Eigenvalues(_)) => false,
     }
 }
 
@@ -99,8 +139,38 @@ impl Solved {
 #[derive(Clone, Copy, Debug)]
 pub struct Row<'t> {
     table: &'t Table<'t>,
-    id: &'t str,
+    /// Index of the scenario in the model.
+    scenario: usize,
+    solved: &'t Solved,
+    /// The names of all equilibria of the scenario.
+    ids: &'t [String],
+    /// Place in the scenario's list.
+    place: usize,
     equilibrium: &'t Equilibrium,
+}
+
+impl<'t> Row<'t> {
+    fn id(&self) -> &'t str {
+        self.ids.get(self.place).map_or("", String::as_str)
+    }
+
+    /// What is said of it, where anything was computed.
+    fn assessed(&self) -> Option<&'t Assessed> {
+        self.solved.assessment.equilibria.get(self.place)
+    }
+
+    fn linear(&self) -> Option<&'t Linearisation> {
+        self.assessed()?.linear.as_ref().ok()
+    }
+
+    fn measures(&self) -> Option<&'t Measures> {
+        self.assessed().map(|assessed| &assessed.measures)
+    }
+
+    /// Where paths from it may lead.
+    fn place(&self) -> paths::Place<'t> {
+        paths::Place { table: self.table, scenario: self.scenario, ids: self.ids }
+    }
 }
 
 impl<'t> Table<'t> {
@@ -110,8 +180,38 @@ impl<'t> Table<'t> {
         identify(&self.scenes.iter().map(list).collect::<Vec<_>>())
     }
 
-    fn rows<'a>(&'a self, solved: &'a Solved, ids: &'a [String]) -> Vec<Row<'a>> {
-        let row = |(equilibrium, id): (&'a Equilibrium, &'a String)| Row { table: self, id, equilibrium };
-        solved.equilibria.list.iter().zip(ids).map(row).collect()
+    fn rows<'a>(&'a self, scene: &Scene, solved: &'a Solved, ids: &'a [String]) -> Vec<Row<'a>> {
+        let list = solved.equilibria.list.iter().enumerate();
+        list.map(|(place, equilibrium)| Row { table: self, scenario: scene.scenario, solved, ids, place, equilibrium })
+            .collect()
     }
+
+    fn symbol(&self, species: usize) -> Option<&'t str> {
+        self.model.species.get(species).map(|species| species.symbol.as_str())
+    }
+
+    fn parameter(&self, id: ParameterId) -> String {
+        self.model.parameters.get(id.0).map_or_else(String::new, |parameter| parameter.name.clone())
+    }
+
+    /// Whether the model steps.
+    fn is_map(&self) -> bool {
+        matches!(self.model.time, TimeKind::Discrete { .. })
+    }
+
+    /// The harvests of all scenarios shown, one after another.
+    fn harvests(&self) -> impl Iterator<Item = &'t Harvest> {
+        self.scenes.iter().flat_map(|scene| self.model.harvests_under(scene.scenario))
+    }
+}
+
+/// A number that reads back the same; without a minus on zero, null where it is not finite.
+fn exact(x: f64) -> Value {
+    // −0 + 0 = 0.
+    (x + 0.0).into()
+}
+
+/// The same, and null where there is none.
+fn optional(x: Option<f64>) -> Value {
+    x.map_or(Value::Null, exact)
 }

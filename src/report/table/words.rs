@@ -1,14 +1,48 @@
 //! What text and data say alike.
 
 use crate::analysis::equilibria::{Derivative, Equilibria, Probably, Unresolved};
+use crate::analysis::linearise::{Test, Unavailable, Verdict};
 use crate::model::Species;
+use crate::num::eigen::Unsolved;
 
+use super::Table;
 use super::number::human;
 
 /// What every table ends with.
 pub(in crate::report) const CAUTION: &str = "These are local results about a model, no better than its equations and its \
      figures. Limits on catch, bag or control are set by the responsible authority, under local law and in licensed \
      practice.";
+
+/// Said of a table whose search was broken off.
+pub(super) const INTERRUPTED: &str = "INTERRUPTED: the search was broken off; this is a partial result.";
+
+/// Before what is said of a list that may lack equilibria.
+pub(super) const INCOMPLETE: &str = "NOT PROVED COMPLETE";
+
+/// Before what is said of a part of the box that stayed open.
+pub(super) const UNDECIDED: &str = "undecided";
+
+/// The words that tell proofs from numbers, as far as the table has them, with their meanings.
+pub(super) fn meanings(table: &Table<'_>) -> Vec<(&'static str, &'static str)> {
+    let solved = || table.scenes.iter().filter_map(|scene| scene.outcome.as_ref().ok());
+    let linear =
+        || solved().flat_map(|solved| &solved.assessment.equilibria).filter_map(|one| one.linear.as_ref().ok());
+    let any_state = |proven| solved().any(|solved| solved.equilibria.list.iter().any(|e| e.proven == proven));
+    let any_type = |proven| linear().any(|linear| linear.kind_proven == proven || linear.stable_proven == proven);
+    let is_open = solved().any(|solved| !solved.equilibria.unresolved.is_empty());
+    let proved = if any_type(true) { PROVED_TYPE } else { PROVED };
+    let all = [
+        (any_state(true) || any_type(true), proof(true), proved),
+        (any_state(false) || any_type(false), proof(false), "computed, but nothing is proved about it."),
+        (is_open, UNDECIDED, "a part of the search box that may hold equilibria or none."),
+    ];
+    all.into_iter().filter_map(|(is_used, word, meaning)| is_used.then_some((word, meaning))).collect()
+}
+
+const PROVED: &str = "exactly one equilibrium lies within the error given, relative to each abundance.";
+
+const PROVED_TYPE: &str = "of a state: exactly one equilibrium lies within the error given, relative to each \
+     abundance; of a type and of stability: so it is, for the model as written.";
 
 /// The contract's word for what an undecided box probably is.
 pub(super) fn probably(probably: Probably) -> &'static str {
@@ -54,6 +88,42 @@ pub(super) fn why(derivative: Derivative) -> Option<&'static str> {
         Derivative::Exists => None,
         Derivative::Kink => Some("rates have a kink here"),
         Derivative::Missing => Some("rates have no derivative here"),
+    }
+}
+
+/// Why an equilibrium has no linearisation that was looked for.
+pub(super) fn unavailable(reason: Unavailable) -> &'static str {
+    match reason {
+        Unavailable::NoDerivative(derivative) => why(derivative).unwrap_or("rates have no derivative here"),
+        Unavailable::Eigenvalues(Unsolved::NotFinite) => "derivatives are not finite here",
+        Unavailable::Eigenvalues(Unsolved::NoConvergence) => "eigenvalues did not come out",
+    }
+}
+
+/// Whether something is proved, or only computed.
+pub(super) fn proof(proven: bool) -> &'static str {
+    if proven { "proved" } else { "numerical" }
+}
+
+/// The contract's word for what the nonlinear terms say.
+pub(super) fn verdict_word(verdict: Verdict) -> &'static str {
+    match verdict {
+        Verdict::Attracts => "attracts",
+        Verdict::Repels => "repels",
+        Verdict::SemiStable => "semi-stable",
+        Verdict::Open => "open",
+    }
+}
+
+/// The contract's word for the coefficient that decides.
+pub(super) fn test(test: Test) -> &'static str {
+    match test {
+        Test::Fold => "fold",
+        Test::Transcritical => "transcritical",
+        Test::Pitchfork => "pitchfork",
+        Test::Cusp => "cusp",
+        Test::FirstLyapunov => "first Lyapunov coefficient",
+        Test::Flip => "flip coefficient",
     }
 }
 

@@ -1,0 +1,159 @@
+//! Where paths go, as words, sentences and data: what an unstable state gives way to, where today's stocks lead.
+//!
+//! All of it is numerical, and every sentence says so.
+
+use serde_json::{Map, Value, json};
+
+use crate::analysis::paths::{Cycle, Destination, FromNow};
+use crate::model::SpeciesId;
+
+use super::columns::by_symbol;
+use super::number::human;
+use super::{Table, exact, optional};
+
+/// What is needed to name where a path ends.
+#[derive(Clone, Copy, Debug)]
+pub(super) struct Place<'t> {
+    pub(super) table: &'t Table<'t>,
+    /// Index of the scenario in the model.
+    pub(super) scenario: usize,
+    /// The names of its equilibria.
+    pub(super) ids: &'t [String],
+}
+
+/// The contract's word for a destination: `E2`, `cycle`, `loss of C`, `not settled`.
+pub(super) fn word(place: Place<'_>, to: &Destination) -> String {
+    match to {
+        Destination::Equilibrium(index) => place.ids.get(*index).cloned().unwrap_or_else(|| "not settled".to_owned()),
+        Destination::Cycle(_) => "cycle".to_owned(),
+        Destination::Loss(lost) => {
+            let symbols: Vec<&str> = lost.iter().filter_map(|id| place.table.symbol(id.0)).collect();
+            format!("loss of {}", symbols.join(", "))
+        }
+        Destination::NotSettled => "not settled".to_owned(),
+    }
+}
+
+/// A destination as data, with what is known of a cycle.
+pub(super) fn destination(place: Place<'_>, to: &Destination) -> Value {
+    let mut keys = Map::from_iter([("to".to_owned(), word(place, to).into())]);
+    if let Destination::Cycle(cycle) = to {
+        keys.extend(cycle_keys(place, cycle));
+    }
+    Value::Object(keys)
+}
+
+fn cycle_keys(place: Place<'_>, cycle: &Cycle) -> Map<String, Value> {
+    let Place { table, .. } = place;
+    let harvests = table.model.harvests_under(place.scenario);
+    let amounts = |amounts: &[(SpeciesId, f64)]| by_symbol(table, amounts.iter().map(|&(id, x)| (id.0, Some(x))));
+    let yields = harvests.iter().zip(&cycle.mean_yield);
+    let mean: Map<String, Value> = yields.map(|(harvest, taken)| (harvest.name.clone(), amounts(taken))).collect();
+    Map::from_iter([
+        ("period".to_owned(), exact(cycle.period)),
+        ("lowest".to_owned(), state(table, &cycle.lowest)),
+        ("highest".to_owned(), state(table, &cycle.highest)),
+        ("mean_yield".to_owned(), Value::Object(mean)),
+    ])
+}
+
+fn state(table: &Table<'_>, state: &[f64]) -> Value {
+    by_symbol(table, state.iter().map(|&x| Some(x)).enumerate())
+}
+
+/// Where today's stocks lead, as data.
+pub(super) fn from_now(place: Place<'_>, from: &FromNow) -> Value {
+    let shares = from.shares.iter().map(|(to, share)| (word(place, to), exact(*share)));
+    let mut keys = json!({
+        "reaches": word(place, &from.reaches),
+        "time": optional(from.time),
+        "lowest": state(place.table, &from.lowest),
+        "shares": shares.collect::<Map<_, _>>(),
+        "starts": from.starts,
+    });
+    if let (Value::Object(keys), Destination::Cycle(cycle)) = (&mut keys, &from.reaches) {
+        keys.insert("cycle".to_owned(), Value::Object(cycle_keys(place, cycle)));
+    }
+    keys
+}
+
+/// Where today's stocks lead, in a sentence or two.
+pub(super) fn from_now_in_words(place: Place<'_>, from: &FromNow) -> String {
+    let table = place.table;
+    let today: Vec<String> = table.model.now.iter().map(|now| amount(table, now.species.0, now.value)).collect();
+    let start = if today.is_empty() { "From today's stocks".to_owned() } else { format!("From {}", today.join(", ")) };
+    let time = &table.model.time_unit.value;
+    let when = from.time.map_or_else(String::new, |after| format!(", to within 10 % after {} {time}", human(after)));
+    let lowest: Vec<String> = from.lowest.iter().enumerate().map(|(i, &x)| amount(table, i, x)).collect();
+    let lowest = if lowest.is_empty() { String::new() } else { format!("; lowest on the way {}", lowest.join(", ")) };
+    let end = ends(place, &from.reaches);
+    format!("{start}, the path {end}{when}{lowest} (numerical).{}", shares_in_words(place, from))
+}
+
+fn shares_in_words(place: Place<'_>, from: &FromNow) -> String {
+    if from.shares.is_empty() {
+        return String::new();
+    }
+    let one = |(to, share): &(Destination, f64)| format!("{} of them {}", percent(*share), ends(place, to));
+    let all: Vec<String> = from.shares.iter().map(one).collect();
+    format!(" Of {} starts as uncertain as the survey, {}.", from.starts, all.join(", "))
+}
+
+/// How a path ends, after its subject.
+fn ends(place: Place<'_>, to: &Destination) -> String {
+    match to {
+        Destination::Equilibrium(_) => format!("reaches {}", word(place, to)),
+        Destination::Cycle(_) => "settles on a cycle".to_owned(),
+        Destination::Loss(_) => format!("leads to the {}", word(place, to)),
+        Destination::NotSettled => "has not settled in the time that it was followed".to_owned(),
+    }
+}
+
+/// A share in whole percent, and never all or nothing where it is neither.
+fn percent(share: f64) -> String {
+    match share {
+        x if x > 0.0 && x < 0.01 => "under 1 %".to_owned(),
+        x if x > 0.99 && x < 1.0 => "over 99 %".to_owned(),
+        x => format!("{:.0} %", 100.0 * x),
+    }
+}
+
+/// What an unstable state gives way to, in a sentence.
+pub(super) fn settles_in_words(place: Place<'_>, id: &str, to: &Destination) -> String {
+    let end = match to {
+        Destination::Cycle(cycle) => format!("settles on {}", cycle_in_words(place.table, cycle)),
+        other => ends(place, other),
+    };
+    format!("{id} is unstable: a path released beside it {end} (numerical).")
+}
+
+fn cycle_in_words(table: &Table<'_>, cycle: &Cycle) -> String {
+    let sides = cycle.lowest.iter().zip(&cycle.highest).enumerate();
+    let between = |(i, (&low, &high)): (usize, (&f64, &f64))| {
+        let symbol = table.symbol(i).unwrap_or("");
+        format!("{symbol} from {} to {}{}", human(low), human(high), unit(table, i))
+    };
+    let sides: Vec<String> = sides.map(between).collect();
+    format!("a cycle of {} {}: {}", human(cycle.period), table.model.time_unit.value, sides.join(", "))
+}
+
+fn amount(table: &Table<'_>, species: usize, x: f64) -> String {
+    format!("{} {}{}", table.symbol(species).unwrap_or(""), human(x), unit(table, species))
+}
+
+fn unit(table: &Table<'_>, species: usize) -> String {
+    let unit = table.model.species.get(species).and_then(|species| species.unit.as_ref());
+    unit.map_or_else(String::new, |unit| format!(" {}", unit.value))
+}
+
+#[cfg(test)]
+mod tests {
+    use super::percent;
+
+    #[test]
+    fn shares_are_never_rounded_to_all_or_nothing() {
+        for (share, text) in [(0.0, "0 %"), (1e-9, "under 1 %"), (0.07, "7 %"), (0.9999, "over 99 %"), (1.0, "100 %")] {
+            assert_eq!(percent(share), text);
+        }
+    }
+}
