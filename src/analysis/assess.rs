@@ -34,8 +34,11 @@ pub fn assess(subject: &mut Subject<'_>, equilibria: &Equilibria, stop: &dyn Fn(
     let linear: Vec<_> = list.iter().map(|equilibrium| lineariser.at(equilibrium)).collect();
     let meter = Meter::new(subject);
     let parts: Vec<Option<&Linearisation>> = linear.iter().map(|linear| linear.as_ref().ok()).collect();
-    let measures: Vec<Measures> =
-        list.iter().zip(&parts).map(|(equilibrium, linear)| meter.measure(subject, equilibrium, *linear, stop)).collect();
+    let measures: Vec<Measures> = list
+        .iter()
+        .zip(&parts)
+        .map(|(equilibrium, linear)| meter.measure(subject, equilibrium, *linear, stop))
+        .collect();
     let mut release = |which: usize| {
         let unstable = parts[which].is_some_and(|linear| is_unstable_coexistence(subject, &list[which], linear));
         unstable.then(|| settles(subject, list, &parts, which, stop))
