@@ -1,6 +1,6 @@
 //! Numbers of 32 digits against exact whole arithmetic, identities, and references from `tests/data/double_references.py`.
 
-#![expect(clippy::expect_used, clippy::panic, reason = "a broken table is a failed test")]
+#![expect(clippy::panic, reason = "a broken table is a failed test")]
 
 use restpoint::expr::function::{FUNCTIONS, Function, Quotient};
 use restpoint::expr::tape::number::{Domain, Number};
