@@ -3,11 +3,14 @@
 
 mod common;
 
+use std::sync::atomic::{AtomicUsize, Ordering};
+
+use common::Source;
 use common::families::{Family, examples, folds, linear, placed, scaled, webs, widened};
 use common::solve::{Method, meet, solve, solve_within};
+use common::whole::Whole;
 use common::workers::Two;
-use restpoint::analysis::equilibria::{Budget, Equilibria, OneByOne, Probably};
-use restpoint::num::interval::Interval;
+use restpoint::analysis::equilibria::{Budget, Derivative, Equilibria, OneByOne, Probably};
 
 fn check(family: &Family, found: &Equilibria) {
     let name = &family.name;
@@ -155,16 +158,41 @@ fn a_spent_budget_is_said_and_nothing_false_with_it() {
 }
 
 #[test]
-fn enclosures_are_a_few_last_places_wide() {
-    // Communities keep every rounding error of their residuals; elsewhere a residual is as good as interval arithmetic on
-    // the rows is, and its cancellation shows in the enclosure.
-    for (family, method) in [(linear::lotka_volterra(4, 3), Method::Chosen), (placed::cubics(3, 3), Method::Certified)]
-    {
-        for equilibrium in solve(&mut family.text.read(), 0, method).list {
+fn a_search_may_be_stopped_anywhere() {
+    let check = |family: &Family, method: Method, asked: usize| {
+        let count = AtomicUsize::new(0);
+        let stop = || count.fetch_add(1, Ordering::Relaxed) >= asked;
+        let budget = Budget { boxes: 700, stop: &stop, workers: &OneByOne, observer: None };
+        let found = solve_within(&mut family.text.read(), 0, method, &budget);
+        let name = &family.name;
+        let is_said = found.unresolved.iter().any(|open| open.probably == Probably::Budget);
+        assert!(found.complete != is_said, "{name}, stopped at {asked}: {:?}", found.unresolved);
+        assert!(!found.complete || found.list.len() == certified(family).list.len(), "{name}, stopped at {asked}");
+        assert!(found.list.iter().all(|e| e.proven && e.derivative == Derivative::Exists), "{name}, {asked}");
+    };
+    let large = Whole::random(&mut Source::new(1), 20, [-2, 0], 40).text();
+    let large = Family::unknown("twenty competitors", large);
+    for asked in [0, 1, 2, 3, 7, 20, 55, 148, 403, 1096, 2980] {
+        check(&webs::web(5, 3), Method::Certified, asked);
+        check(&webs::web(9, 3), Method::Chosen, asked);
+        check(&linear::lotka_volterra_block(6, 1), Method::Chosen, asked);
+        check(&large, Method::Chosen, asked);
+    }
+}
+
+#[test]
+fn enclosures_are_two_last_places_wide() {
+    let community = (linear::lotka_volterra(4, 3), Method::Chosen);
+    let web = (webs::web(9, 3), Method::Chosen);
+    let certified = [placed::cubics(3, 3), webs::dense_six_species(), folds::hidden_pair(3, 1e-7, 1)];
+    let certified = certified.map(|family| (family, Method::Certified));
+    for (family, method) in certified.into_iter().chain([community, web]) {
+        let budget = Budget { boxes: 700, stop: &|| false, workers: &OneByOne, observer: None };
+        for equilibrium in solve_within(&mut family.text.read(), 0, method, &budget).list {
             for (i, side) in equilibrium.enclosure.iter().enumerate() {
                 let unit = equilibrium.state[i].abs() * f64::EPSILON;
-                assert!(side.width() <= 64.0 * unit, "{}: {side:?}", family.name);
-                assert!(side.contains(equilibrium.state[i]) && *side != Interval::ENTIRE);
+                assert!(side.width() <= 2.0 * unit, "{}: {side:?}", family.name);
+                assert!(side.contains(equilibrium.state[i]), "{}: {side:?}", family.name);
             }
         }
     }

@@ -5,7 +5,7 @@ mod cli_support;
 
 use std::collections::{BTreeMap, BTreeSet};
 
-use cli_support::{fast, run};
+use cli_support::{fast, run, run_on};
 use serde_json::{Map, Value};
 
 /// The contract's keys, in its order; then ours.
@@ -14,6 +14,7 @@ const MODEL: [&str; 4] = ["title", "sha256", "time", "tables"];
 const SCENARIO: [&str; 6] = ["name", "parameters", "search", "from_now", "equilibria", "overlay"];
 const SEARCH: [&str; 4] = ["box", "complete", "beyond", "unresolved"];
 const UNRESOLVED: [&str; 3] = ["box", "probably", "text"];
+const CONTINUUM: [&str; 5] = ["box", "probably", "text", "dimension", "witnesses"];
 const EQUILIBRIUM: [&str; 9] = ["id", "state", "present", "proven", "radius", "eigenvalues", "type", "stable", "why"];
 const PROBABLY: [&str; 5] = ["double root", "continuum", "no derivative", "kink", "budget"];
 
@@ -69,7 +70,9 @@ fn check_scenario(scenario: &Value) {
     assert!(["none", "not claimed"].contains(&search["beyond"].as_str().unwrap()));
     let species = symbols(&search["box"]);
     for one in list(&search["unresolved"]) {
-        keys(one, &UNRESOLVED, &UNRESOLVED);
+        let is_continuum = one["probably"] == "continuum";
+        keys(one, &CONTINUUM, if is_continuum { &CONTINUUM } else { &UNRESOLVED });
+        assert!(is_continuum || one.get("witnesses").is_none());
         assert_eq!(symbols(&one["box"]), species);
         assert!(PROBABLY.contains(&one["probably"].as_str().unwrap()));
     }
@@ -122,6 +125,27 @@ fn every_shipped_model_gives_what_the_contract_says() {
         assert_eq!(format!("{json:#}\n"), ran.out, "{name}");
         assert!(!list(&json["scenarios"]).is_empty(), "{name}");
     }
+}
+
+/// Both rates vanish where a + b = 1.
+const LINE: &str = "
+title: a line of equilibria
+time: yr
+species: {a: {upper: 3}, b: {upper: 3}}
+change: {a: a*(1 - a - b)/(1 + a), b: b*(1 - a - b)}
+";
+
+#[test]
+fn a_continuum_has_its_dimension_and_points_on_it() {
+    let json: Value = serde_json::from_str(&run_on(LINE, &["table", "-", "--format", "json"]).out).unwrap();
+    check_model(&json);
+    let unresolved = list(&json["scenarios"][0]["search"]["unresolved"]);
+    let line = unresolved.iter().find(|one| one["probably"] == "continuum").unwrap();
+    assert_eq!(line["dimension"], 1);
+    let points: Vec<Vec<f64>> = list(&line["witnesses"]).iter().map(numbers).collect();
+    assert!(points.len() > 1 && points.iter().all(|x| (x[0] + x[1] - 1.0).abs() < 1e-8), "{points:?}");
+    let text = run_on(LINE, &["table", "-"]).out.split_whitespace().collect::<Vec<_>>().join(" ");
+    assert!(text.contains("points on it: a = "), "{text}");
 }
 
 #[test]

@@ -1,6 +1,7 @@
 //! Roots on the border of the orthant: zeros shown to be exactly zero, the same point seen on two faces, and points where
 //! the rates have no derivative.
 
+use super::corner;
 use super::faces::Face;
 use super::newton::{Equations, Proved};
 use super::{Candidate, Derivative, Equilibrium, Probably, Problem, Unresolved, everywhere};
@@ -37,13 +38,11 @@ pub(super) fn settle(graph: &mut Graph, face: &Face, root: &Proved, problem: &Pr
         let divided = face.variables.iter().zip(&face.divided).any(|(i, divided)| *divided && near_zero.contains(i));
         return (!divided).then(|| Settled::Root(candidate(face, root, n)));
     }
-    match exact_zeros(graph, face, root, &near_zero, problem) {
-        Some(proved) => Some(Settled::Root(proved)),
-        None => {
-            let text = "an equilibrium on the border, or one beside it, or both: they are too close to be told apart";
-            Some(Settled::Open(Unresolved::new(enclosure, Probably::DoubleRoot, text)))
-        }
+    if let Some(found) = exact_zeros(graph, face, root, &near_zero, problem) {
+        return Some(Settled::Root(found));
     }
+    let text = "an equilibrium on the border, or one beside it, or both: they are too close to be told apart";
+    Some(Settled::Open(Unresolved::new(enclosure, Probably::DoubleRoot, text)))
 }
 
 fn candidate(face: &Face, root: &Proved, n: usize) -> Candidate {
@@ -125,22 +124,35 @@ pub(super) fn merge(candidates: &mut Vec<Candidate>) {
     *candidates = kept;
 }
 
-/// Asks the full rates, not the divided ones, whether they have a derivative there. `None`, and nothing is known of the
-/// derivative, where `stop` said so.
-pub(super) fn look_at_derivative(
-    tape: &Tape,
-    values: &[f64],
-    equilibrium: &mut Equilibrium,
+/// Asks the full rates, not the divided ones, whether they have a derivative at a root; where they have no value there,
+/// whether they go to 0 from every direction. `None` where `stop` said so before that was known.
+pub(super) fn accept(
+    graph: &mut Graph,
+    mut candidate: Candidate,
+    rates: &Tape,
+    problem: &Problem<'_>,
     stop: &dyn Fn() -> bool,
-) -> Option<()> {
-    let exact: Vec<Interval> = values.iter().map(|&value| Interval::point(value)).collect();
-    let mut run = tape.start_gradient(&exact);
-    let domain = run.at_unless(&equilibrium.enclosure, stop)?;
-    let bounded = (0..tape.outputs()).all(|i| run.gradient(i).is_none_or(|row| row.iter().all(|s| s.is_bounded())));
-    if !domain.defined || !bounded {
-        equilibrium.derivative = Derivative::Missing;
-    } else if !domain.smooth {
-        equilibrium.derivative = Derivative::Kink;
+) -> Option<Settled> {
+    candidate.equilibrium.derivative = derivative(rates, problem.values, &candidate.equilibrium, stop)?;
+    let is_plain = candidate.equilibrium.derivative != Derivative::Missing;
+    if is_plain || corner::is_limit(graph, problem, &candidate.equilibrium) {
+        return Some(Settled::Root(candidate));
     }
-    Some(())
+    let text = "the rates vanish along the borders here, but have no value, and it is not proved that they go to 0 from \
+                every direction";
+    Some(Settled::Open(Unresolved::new(candidate.equilibrium.enclosure, Probably::NoDerivative, text)))
+}
+
+fn derivative(rates: &Tape, values: &[f64], at: &Equilibrium, stop: &dyn Fn() -> bool) -> Option<Derivative> {
+    let exact: Vec<Interval> = values.iter().map(|&value| Interval::point(value)).collect();
+    let mut run = rates.start_gradient(&exact);
+    let domain = run.at_unless(&at.enclosure, stop)?;
+    let bounded = (0..rates.outputs()).all(|i| run.gradient(i).is_none_or(|row| row.iter().all(|s| s.is_bounded())));
+    Some(if !domain.defined || !bounded {
+        Derivative::Missing
+    } else if !domain.smooth {
+        Derivative::Kink
+    } else {
+        at.derivative
+    })
 }

@@ -9,6 +9,7 @@ mod border;
 mod bordered;
 mod choose;
 mod cluster;
+mod corner;
 mod faces;
 pub mod linear;
 mod newton;
@@ -242,18 +243,20 @@ impl Whole {
             let found = whole.look_at(graph, &face, problem, budget);
             if !found.is_empty() {
                 let rates = &*rates.get_or_insert_with(|| Tape::new(graph, problem.rows));
-                whole.keep(found, rates, problem.values);
+                whole.keep(found, rates, graph, problem);
             }
         }
         whole
     }
 
-    /// Takes what was found on a face for equilibria, and says whether the rates have a derivative there.
-    fn keep(&mut self, found: Vec<Candidate>, rates: &Tape, values: &[f64]) {
-        for mut candidate in found {
-            // Never stopped.
-            if border::look_at_derivative(rates, values, &mut candidate.equilibrium, &|| false).is_some() {
-                self.candidates.push(candidate);
+    /// Takes what was found on a face for equilibria, if the rates go to 0 there.
+    fn keep(&mut self, found: Vec<Candidate>, rates: &Tape, graph: &mut Graph, problem: &Problem<'_>) {
+        for candidate in found {
+            match border::accept(graph, candidate, rates, problem, &|| false) {
+                Some(border::Settled::Root(candidate)) => self.candidates.push(candidate),
+                Some(border::Settled::Open(unresolved)) => self.unresolved.push(unresolved),
+                // Only where it was stopped.
+                None => {}
             }
         }
     }

@@ -104,7 +104,9 @@ pub(super) fn look_again(
         match decided {
             Heap::Empty => {}
             Heap::Roots(mut roots) => {
-                roots.iter_mut().for_each(|root| equations.sharpen(root));
+                for root in &mut roots {
+                    equations.sharpen(root);
+                }
                 remains.roots.extend(roots);
             }
             Heap::DoubleOrTwo => {

@@ -64,7 +64,7 @@ impl<'t, T: Sharp> Residual<'t, T> {
             self.tape.start(&parameters)
         });
         let exact: Vec<T> = point.iter().map(|&x| T::coordinate(x)).collect();
-        run.at(&exact).defined.then(|| run.outputs().map(|value| value.enclosure()).collect())
+        run.at(&exact).defined.then(|| run.outputs().map(Sharp::enclosure).collect())
     }
 }
 

@@ -12,19 +12,19 @@ impl Number for Double {
     }
 
     fn neg(&self) -> Self {
-        Self::neg(*self)
+        -*self
     }
 
     fn add(&self, other: &Self) -> Self {
-        Self::add(*self, *other)
+        *self + *other
     }
 
     fn sub(&self, other: &Self) -> Self {
-        Self::sub(*self, *other)
+        *self - *other
     }
 
     fn mul(&self, other: &Self) -> Self {
-        Self::mul(*self, *other)
+        *self * *other
     }
 
     fn div(&self, other: &Self, domain: &mut Domain) -> Self {
@@ -63,7 +63,7 @@ impl Number for Double {
     }
 
     fn saturation([s, c, v]: [&Self; 3], domain: &mut Domain) -> Self {
-        let den = Self::add(*v, Self::mul(*c, *s));
+        let den = *v + *c * *s;
         if !den.enclosure().contains_zero() {
             return Self::div(*s, den, &mut domain.defined);
         }
@@ -83,7 +83,7 @@ impl Number for Double {
         let u = self.enclosure();
         if k == 0 && u.lo() > -1.0 && !u.contains_zero() {
             // (1 + u)^p − 1 without cancellation.
-            let grown = Self::mul(*p, self.log1p(&mut domain.defined)).expm1();
+            let grown = (*p * self.log1p(&mut domain.defined)).expm1();
             return Self::div(grown, *self, &mut domain.defined);
         }
         Self::around(u.power_quotient(k, &p.enclosure(), domain))

@@ -19,7 +19,7 @@ impl Written {
             return Self(Double::exact(value));
         }
         let half = (value.abs().next_up() - value.abs()) / 2.0;
-        Self(Double::exact(value).add(Double::around(Interval::new(-half, half))))
+        Self(Double::exact(value) + Double::around(Interval::new(-half, half)))
     }
 }
 
@@ -47,19 +47,19 @@ impl Number for Written {
     }
 
     fn neg(&self) -> Self {
-        Self(self.0.neg())
+        Self(-self.0)
     }
 
     fn add(&self, other: &Self) -> Self {
-        Self(self.0.add(other.0))
+        Self(self.0 + other.0)
     }
 
     fn sub(&self, other: &Self) -> Self {
-        Self(self.0.sub(other.0))
+        Self(self.0 - other.0)
     }
 
     fn mul(&self, other: &Self) -> Self {
-        Self(self.0.mul(other.0))
+        Self(self.0 * other.0)
     }
 
     fn div(&self, other: &Self, domain: &mut Domain) -> Self {
@@ -121,9 +121,9 @@ mod tests {
             check(rounded, false);
         }
         // Ten tenths are 1; ten times the f64 beside a tenth are not.
-        let ten = Written::of(0.1).0.mul(Double::exact(10.0)).sub(Double::exact(1.0)).enclosure();
+        let ten = (Written::of(0.1).0 * Double::exact(10.0) - Double::exact(1.0)).enclosure();
         assert!(ten.contains_zero() && ten.width() < 3e-16, "{ten:?}");
-        let f64_alone = Double::exact(0.1).mul(Double::exact(10.0)).sub(Double::exact(1.0)).enclosure();
+        let f64_alone = (Double::exact(0.1) * Double::exact(10.0) - Double::exact(1.0)).enclosure();
         assert!(!f64_alone.contains_zero(), "{f64_alone:?}");
     }
 }

@@ -8,8 +8,9 @@ use super::Double;
 use crate::num::elementary as scalar;
 use crate::num::interval::Interval;
 
-/// Halvings of the argument before the series: it is then below ln 2/128 = 0.0055.
+/// Halvings of the argument before the series, and what they leave of it: it is then below ln 2/128 = 0.0055.
 const HALVINGS: i32 = 6;
+const SHARE: f64 = 1.0 / 64.0;
 /// Terms of the series: 0.0055^13/13! is below 2^−128 of the first.
 const TERMS: u32 = 12;
 /// Arguments beyond which e^x is left to the interval function: far from overflow and underflow.
@@ -31,7 +32,7 @@ impl Double {
             return Self::around(self.enclosure().exp());
         }
         let [t, scale] = self.reduced();
-        Self::exact(1.0).add(t).mul(scale)
+        (Self::exact(1.0) + t) * scale
     }
 
     /// e^a − 1, as sharp near 0 as elsewhere.
@@ -42,20 +43,19 @@ impl Double {
         }
         let [t, scale] = self.reduced();
         // 2^k (1 + t) − 1 = 2^k t + (2^k − 1)
-        t.mul(scale).add(scale.sub(Self::exact(1.0)))
+        t * scale + (scale - Self::exact(1.0))
     }
 
     /// t and 2^k with e^a = 2^k (1 + t).
     fn reduced(self) -> [Self; 2] {
         let k = (self.main / LN_2[0]).round();
         let ln_2 = Self::of(LN_2[0], Interval::point(LN_2[1]) + Interval::new(-LN_2_ERROR, LN_2_ERROR));
-        let reduced = if k == 0.0 { self } else { self.sub(Self::exact(k).mul(ln_2)) };
-        let share = Self::exact(f64::from(-HALVINGS).exp2());
-        let mut t = small_expm1(reduced.mul(share));
+        let reduced = if k == 0.0 { self } else { self - Self::exact(k) * ln_2 };
+        let mut t = small_expm1(reduced * Self::exact(SHARE));
         for _ in 0..HALVINGS {
-            t = t.mul(Self::exact(2.0).add(t));
+            t = t * (Self::exact(2.0) + t);
         }
-        [t, Self::exact(k.exp2())]
+        [t, Self::exact(power_of_two(k))]
     }
 
     /// ln a; clears `defined` where a may be 0 or less.
@@ -67,9 +67,9 @@ impl Double {
             return Self::around(whole.ln(defined));
         }
         if (self.main - 1.0).abs() < 0.25 {
-            return self.sub(Self::exact(1.0)).log1p(defined);
+            return (self - Self::exact(1.0)).log1p(defined);
         }
-        let off = self.mul(Self::exact(-y).exp()).sub(Self::exact(1.0));
+        let off = self * Self::exact(-y).exp() - Self::exact(1.0);
         Self::of(y, off.enclosure().log1p(defined))
     }
 
@@ -83,7 +83,7 @@ impl Double {
         }
         // (1 + a) e^−y − 1 = a + (e^−y − 1)(1 + a)
         let back = Self::exact(-y).expm1();
-        let off = self.add(back.mul(Self::exact(1.0).add(self)));
+        let off = self + back * (Self::exact(1.0) + self);
         Self::of(y, off.enclosure().log1p(defined))
     }
 
@@ -101,8 +101,8 @@ impl Double {
         if !self.is_narrow() || self.main.abs() > 20.0 || self.main.abs() < TINY {
             return Self::around(self.enclosure().tanh());
         }
-        let t = self.add(self).expm1();
-        t.div(t.add(Self::exact(2.0)), &mut true)
+        let t = (self + self).expm1();
+        t.div(t + Self::exact(2.0), &mut true)
     }
 
     /// a^b for a real exponent; clears `defined` as the interval's power does.
@@ -112,12 +112,17 @@ impl Double {
         if whole.lo() <= 0.0 || exponent.is_zero() {
             return Self::around(whole.pow(exponent.enclosure(), defined));
         }
-        exponent.mul(self.ln(defined)).exp()
+        (exponent * self.ln(defined)).exp()
     }
 
     fn is_narrow(self) -> bool {
         self.rest.mag() <= WIDE * self.main.abs()
     }
+}
+
+/// 2^k for a whole k from −1022 to 1023: exact, which no library promises of its function.
+fn power_of_two(k: f64) -> f64 {
+    f64::from_bits((1023 + k as i64).cast_unsigned() << 52)
 }
 
 /// e^r − 1 for |r| < 0.006 by Taylor's series; the rest is below its next term times 1/(1 − |r|) < 1.1.
@@ -130,10 +135,10 @@ fn small_expm1(r: Double) -> Double {
     let mut sum = Double::exact(1.0);
     for k in (2..=TERMS).rev() {
         let factor = r.div(Double::exact(f64::from(k)), &mut true);
-        sum = Double::exact(1.0).add(factor.mul(sum));
+        sum = Double::exact(1.0) + factor * sum;
     }
     // |r|^12/13! < 0.006^12/6e9 < 4e-37, relative to the first term.
     let rest = Interval::new(-1e-36, 1e-36);
     let sum = Double { rest: sum.rest + rest, ..sum };
-    r.mul(sum)
+    r * sum
 }

@@ -9,6 +9,8 @@
 
 mod elementary;
 
+use std::ops::{Add, Mul, Neg, Sub};
+
 use super::interval::Interval;
 use super::round::two_sum;
 
@@ -23,6 +25,51 @@ pub struct Double {
     /// Finite.
     main: f64,
     rest: Interval,
+}
+
+impl Neg for Double {
+    type Output = Self;
+
+    fn neg(self) -> Self {
+        Self { main: -self.main, rest: -self.rest }
+    }
+}
+
+impl Add for Double {
+    type Output = Self;
+
+    fn add(self, other: Self) -> Self {
+        let (sum, error) = two_sum(self.main, other.main);
+        if !(sum.is_finite() && error.is_finite()) {
+            return Self::around(self.enclosure() + other.enclosure());
+        }
+        Self::of(sum, self.rest + other.rest + Interval::point(error))
+    }
+}
+
+impl Sub for Double {
+    type Output = Self;
+
+    fn sub(self, other: Self) -> Self {
+        self + -other
+    }
+}
+
+impl Mul for Double {
+    type Output = Self;
+
+    fn mul(self, other: Self) -> Self {
+        if self.is_zero() || other.is_zero() {
+            return Self::exact(0.0);
+        }
+        let product = self.main * other.main;
+        if !(SAFE..LARGE).contains(&product.abs()) {
+            return Self::around(self.enclosure() * other.enclosure());
+        }
+        let error = self.main.mul_add(other.main, -product);
+        let [a, b] = [Interval::point(self.main), Interval::point(other.main)];
+        Self::of(product, Interval::point(error) + (a * other.rest + b * self.rest + self.rest * other.rest))
+    }
 }
 
 impl Double {
@@ -61,43 +108,6 @@ impl Double {
         Self { main: sum, rest: (rest - Interval::point(rest.mid())) + Interval::point(lost) }
     }
 
-    /// −a
-    #[must_use]
-    pub fn neg(self) -> Self {
-        Self { main: -self.main, rest: -self.rest }
-    }
-
-    /// a + b
-    #[must_use]
-    pub fn add(self, other: Self) -> Self {
-        let (sum, error) = two_sum(self.main, other.main);
-        if !(sum.is_finite() && error.is_finite()) {
-            return Self::around(self.enclosure() + other.enclosure());
-        }
-        Self::of(sum, self.rest + other.rest + Interval::point(error))
-    }
-
-    /// a − b
-    #[must_use]
-    pub fn sub(self, other: Self) -> Self {
-        self.add(other.neg())
-    }
-
-    /// a b
-    #[must_use]
-    pub fn mul(self, other: Self) -> Self {
-        if self.is_zero() || other.is_zero() {
-            return Self::exact(0.0);
-        }
-        let product = self.main * other.main;
-        if !(SAFE..LARGE).contains(&product.abs()) {
-            return Self::around(self.enclosure() * other.enclosure());
-        }
-        let error = self.main.mul_add(other.main, -product);
-        let [a, b] = [Interval::point(self.main), Interval::point(other.main)];
-        Self::of(product, Interval::point(error) + (a * other.rest + b * self.rest + self.rest * other.rest))
-    }
-
     /// a / b; clears `defined` where b may be 0.
     ///
     /// a/b = q + (a − q b)/b, with the remainder of the main parts exact.
@@ -125,11 +135,11 @@ impl Double {
         let mut left = n.unsigned_abs();
         while left > 0 {
             if left & 1 == 1 {
-                power = power.mul(square);
+                power = power * square;
             }
             left >>= 1;
             if left > 0 {
-                square = square.mul(square);
+                square = square * square;
             }
         }
         if n < 0 { Self::exact(1.0).div(power, defined) } else { power }
@@ -157,7 +167,7 @@ impl Double {
         if whole.lo() >= 0.0 {
             self
         } else if whole.hi() <= 0.0 {
-            self.neg()
+            -self
         } else {
             Self::around(whole.abs())
         }
@@ -172,7 +182,7 @@ impl Double {
     /// Whether a ≤ b; `None` where that cannot be told.
     #[must_use]
     pub fn at_most(self, other: Self) -> Option<bool> {
-        let apart = self.sub(other).enclosure();
+        let apart = (self - other).enclosure();
         if apart.hi() <= 0.0 {
             Some(true)
         } else if apart.lo() > 0.0 {

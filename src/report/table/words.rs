@@ -74,7 +74,12 @@ pub(super) fn known(open: &Unresolved, species: &[Species]) -> String {
     };
     let points = open.witnesses.iter().map(state).collect::<Vec<_>>().join("; ");
     let points = if points.is_empty() { points } else { format!("points on it: {points}") };
-    [open.text.clone(), points].into_iter().filter(|part| !part.is_empty()).map(|part| format!("; {part}")).collect()
+    let mut known = String::new();
+    for part in [&open.text, &points].into_iter().filter(|part| !part.is_empty()) {
+        known.push_str("; ");
+        known.push_str(part);
+    }
+    known
 }
 
 /// What is claimed above the box, in the contract's words.

@@ -1,6 +1,6 @@
 //! The hunt on one face: starting points, and what Newton's method makes of them, each root proved on its own.
 
-use super::super::border::{Settled, look_at_derivative, settle};
+use super::super::border::{Settled, accept, settle};
 use super::super::faces::Face;
 use super::super::newton::{Equations, Proved, Region};
 use super::super::{Candidate, Problem};
@@ -55,11 +55,14 @@ pub(super) fn hunt(
     let mut rates = None;
     for root in &roots {
         match settle(graph, face, root, problem) {
-            Some(Settled::Root(mut candidate)) => {
+            Some(Settled::Root(candidate)) => {
                 let rates = &*rates.get_or_insert_with(|| Tape::new(graph, problem.rows));
-                let looked_at = look_at_derivative(rates, problem.values, &mut candidate.equilibrium, effort.stop);
-                // A root of which that is not known is left out: the list is not complete anyway.
-                bag.roots.extend(looked_at.map(|()| candidate));
+                match accept(graph, candidate, rates, problem, effort.stop) {
+                    Some(Settled::Root(candidate)) => bag.roots.push(candidate),
+                    Some(Settled::Open(open)) => bag.open.push(open),
+                    // Stopped: left out, since the list is not complete anyway.
+                    None => {}
+                }
             }
             Some(Settled::Open(open)) => bag.open.push(open),
             None => {}
