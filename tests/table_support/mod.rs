@@ -104,11 +104,7 @@ fn measures(model: &Model) -> Measures {
             total: 41.25,
             invasion: Some(0.125),
         }],
-        net_effects: Some(NetEffects {
-            matrix: vec![1.5, -0.25, 0.5, 1e-9],
-            condition: 1e9,
-            nearly_singular: true,
-        }),
+        net_effects: Some(NetEffects { matrix: vec![1.5, -0.25, 0.5, 1e-9], condition: 1e9, nearly_singular: true }),
         elasticities: vec![Elasticity {
             parameter: ParameterId(0),
             state: vec![Some(0.5), None],
@@ -138,7 +134,11 @@ fn present_fleet(model: &Model) -> Solved {
         reaches: Destination::Equilibrium(1),
         time: Some(14.0),
         lowest: vec![590.0, 0.0],
-        shares: vec![(Destination::Equilibrium(1), 0.93), (cycle(), 0.065), (Destination::Loss(vec![SpeciesId(1)]), 0.005)],
+        shares: vec![
+            (Destination::Equilibrium(1), 0.93),
+            (cycle(), 0.065),
+            (Destination::Loss(vec![SpeciesId(1)]), 0.005),
+        ],
         starts: 200,
     };
     Solved {
@@ -201,11 +201,7 @@ fn assessed(linear: Linearisation, settles: Option<Destination>) -> Assessed {
 pub fn scenes(model: &Model) -> Vec<Scene> {
     let problem = Diagnostic::error(model.scenarios[2].at, "the formulas are too many");
     let scene = |scenario, outcome| Scene { scenario, outcome };
-    vec![
-        scene(0, Ok(present_fleet(model))),
-        scene(1, Ok(half_the_effort(model))),
-        scene(2, Err(vec![problem])),
-    ]
+    vec![scene(0, Ok(present_fleet(model))), scene(1, Ok(half_the_effort(model))), scene(2, Err(vec![problem]))]
 }
 
 /// Uses the table of a model, with the columns asked for.
@@ -234,28 +230,55 @@ pub fn with_table<T>(use_it: impl Fn(&Table<'_>) -> T) -> T {
 
 /// Names that mean something to a format, a spreadsheet or a terminal.
 pub const HOSTILE: [&str; 30] = [
-    "a,b;c", "\"quoted\"", "=1+1", "+1", "-1", "@x", "  = 2", "a|b", "| --- |", "<b>x</b> &amp;", "_x_ *y* __z__",
-    "50 % of it", "a\nb\r\nc\td", "\u{202e}evil", "\\end{tabular}", "`code` ``", "$x$ #1 ~ ^", "\u{1b}[31mred", "]]>",
-    "https://x.y/z www.z.w", "{", "}", "\\", "\\\\", "'", "&", "--", "1. x", "- x", "# x",
+    "a,b;c",
+    "\"quoted\"",
+    "=1+1",
+    "+1",
+    "-1",
+    "@x",
+    "  = 2",
+    "a|b",
+    "| --- |",
+    "<b>x</b> &amp;",
+    "_x_ *y* __z__",
+    "50 % of it",
+    "a\nb\r\nc\td",
+    "\u{202e}evil",
+    "\\end{tabular}",
+    "`code` ``",
+    "$x$ #1 ~ ^",
+    "\u{1b}[31mred",
+    "]]>",
+    "https://x.y/z www.z.w",
+    "{",
+    "}",
+    "\\",
+    "\\\\",
+    "'",
+    "&",
+    "--",
+    "1. x",
+    "- x",
+    "# x",
 ];
 
 /// The model with a name wherever a file may have any text.
 pub fn hostile_model(name: &str) -> Model {
     let mut model = model();
-    model.title.value = name.to_owned();
+    model.title.value = String::from(name);
     model.note = Some(name.to_owned());
-    model.time_unit.value = name.to_owned();
-    model.harvest[0].name = name.to_owned();
+    model.time_unit.value = String::from(name);
+    model.harvest[0].name = String::from(name);
     for scenario in &mut model.scenarios {
-        scenario.name = name.to_owned();
+        scenario.name = String::from(name);
     }
     for species in &mut model.species {
-        species.name = name.to_owned();
+        species.name = String::from(name);
         if let Some(unit) = &mut species.unit {
-            unit.value = name.to_owned();
+            unit.value = String::from(name);
         }
     }
-    model.species[0].symbol = "S_1".to_owned();
+    model.species[0].symbol = String::from("S_1");
     model.species[1].population = Some(name.to_owned());
     model
 }
