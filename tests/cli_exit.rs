@@ -39,11 +39,13 @@ fn what_is_not_understood_ends_with_2_and_says_what_was_meant() {
     table(&["--budget", "0"], "a positive number of seconds");
     table(&["--budget", "NaN"], "a positive number of seconds");
     table(&["--threads", "0"], "0 is not in 1..=1024");
-    table(&["--format", "yaml"], "[possible values: text, json]");
+    table(&["--format", "yaml"], "[possible values: text, csv, markdown, json, latex]");
     table(&["--color", "blue"], "[possible values: auto, always, never]");
     table(&["another"], "unexpected argument 'another'");
     table(&["--colour", "never"], "'--color'");
+    table(&["--columns", "sate"], "did you mean \"state\"?");
     check(&["table"], 2, "", "<MODEL>");
+    check(&["--columns", "state", "table", MOOR], 2, "", "--columns belongs after the command");
     check(&["--strict", "table", MOOR], 2, "", "--strict belongs after the command");
     check(&[MOOR, "check", MOOR], 2, "", "belongs after the command");
     check(&["check", MOOR, "--strict"], 2, "", "unexpected argument '--strict'");
@@ -116,9 +118,9 @@ fn options_do_what_they_say() {
     let two =
         ["table", MOOR, "--scenario", "more heather", "--scenario", "present shooting", "--scenario", "more heather"];
     assert_eq!(scenarios(&two), ["present shooting", "more heather"]);
-    check_on(FOLD, &["-", "--set", "a=3", "--set", "a=2.5", "--scenario", "plain"], 0, "  E2  2.500  x ", "");
+    check_on(FOLD, &["-", "--set", "a=3", "--set", "a=2.5", "--scenario", "plain"], 0, "  E2  2.500  proved ", "");
     // Without shooting and hawks, grouse reach what the heather carries.
-    check(&["table", MOOR, "--set", "E=0", "--scenario", "present shooting"], 0, "  E2   160.0    0       G ", "");
+    check(&["table", MOOR, "--set", "E=0", "--scenario", "present shooting"], 0, "  E2   160.0    0       proved ", "");
     check(&["table", MOOR, "--budget", "7.5"], 0, "7.5 s for each scenario", "");
     let plain = run(&["table", MOOR]).out;
     assert!(!plain.contains('\u{1b}'));
@@ -146,9 +148,18 @@ fn help_and_version_are_whole() {
         assert!(ran.out.contains("Usage: restpoint") && ran.out.contains("--output <FILE>"), "{}", ran.out);
     }
     let help = run(&["table", "--help"]).out;
-    for option in
-        ["--scenario", "--set", "--strict", "--budget", "--threads", "--format", "--force", "--ascii", "--color"]
-    {
+    for option in [
+        "--scenario",
+        "--set",
+        "--strict",
+        "--budget",
+        "--threads",
+        "--columns",
+        "--format",
+        "--force",
+        "--ascii",
+        "--color",
+    ] {
         assert!(help.contains(option), "{option}");
     }
     assert_eq!(run(&["--version"]).out, concat!("restpoint ", env!("CARGO_PKG_VERSION"), "\n"));

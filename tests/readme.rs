@@ -77,6 +77,28 @@ fn every_function_is_listed_with_its_meaning() {
 }
 
 #[test]
+fn every_column_and_every_format_is_listed() {
+    let rows = |heading: &str| -> Vec<&str> {
+        let (_, table) = README.split_once(heading).unwrap();
+        table
+            .lines()
+            .skip(2)
+            .take_while(|line| line.starts_with('|'))
+            .map(|row| row.split('|').nth(1).unwrap())
+            .collect()
+    };
+    let words = |rows: Vec<&'static str>| -> Vec<&str> {
+        rows.iter().flat_map(|row| row.split('`').skip(1).step_by(2)).collect()
+    };
+    let mut listed = words(rows("| columns | what they say |"));
+    let mut all: Vec<&str> = restpoint::report::table::columns().map(|column| column.id).collect();
+    listed.sort_unstable();
+    all.sort_unstable();
+    assert_eq!(listed, all);
+    assert_eq!(words(rows("| `--format` | what it is for |")), ["text", "csv", "markdown", "latex", "json"]);
+}
+
+#[test]
 fn every_model_that_comes_with_it_is_listed() {
     let folder = Path::new(env!("CARGO_MANIFEST_DIR")).join("scenarios");
     let names = fs::read_dir(folder).unwrap().map(|entry| entry.unwrap().file_name().into_string().unwrap());

@@ -84,9 +84,9 @@ pub(super) struct Sketch {
 const AFTER_TABLE: &str = "\
 Equilibria are called E1, E2, ... and keep their names in all scenarios of one run.
 
-text, markdown and latex are for people: numbers rounded, columns that are empty left out. csv has one row
-for each equilibrium of each scenario, json the most; both have exact numbers. Every format says what is
-proved, what is numerical and what is undecided, and has what is needed to make the table again.";
+text, markdown and latex are for people: numbers rounded, columns that are empty left out. csv has one row for each \
+equilibrium of each scenario, json has the most; both have exact numbers. Every format says what is proved, what is \
+numerical and what is undecided, and has what is needed to make the table again.";
 
 /// What is shown of the results.
 #[derive(Debug, Default, Args)]

@@ -265,20 +265,20 @@ pub const HOSTILE: [&str; 30] = [
 /// The model with a name wherever a file may have any text.
 pub fn hostile_model(name: &str) -> Model {
     let mut model = model();
-    model.title.value = name.to_owned();
+    model.title.value = String::from(name);
     model.note = Some(name.to_owned());
-    model.time_unit.value = name.to_owned();
-    model.harvest[0].name = name.to_owned();
+    model.time_unit.value = String::from(name);
+    model.harvest[0].name = String::from(name);
     for scenario in &mut model.scenarios {
-        scenario.name = name.to_owned();
+        scenario.name = String::from(name);
     }
     for species in &mut model.species {
-        species.name = name.to_owned();
+        species.name = String::from(name);
         if let Some(unit) = &mut species.unit {
-            unit.value = name.to_owned();
+            unit.value = String::from(name);
         }
     }
-    model.species[0].symbol = "S_1".to_owned();
+    model.species[0].symbol = String::from("S_1");
     model.species[1].population = Some(name.to_owned());
     model
 }

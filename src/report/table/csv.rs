@@ -9,6 +9,7 @@
 use serde_json::Value;
 
 use super::columns::{Column, Path, Shown};
+use super::provenance::whole;
 use super::text::clean;
 use super::{Row, Scene, Solved, Style, Table, paths, provenance, scene, words};
 
@@ -77,7 +78,7 @@ fn context(table: &Table<'_>, scene: &Scene, solved: &Solved, ids: &[String]) ->
     let from = solved.assessment.from_now.as_ref();
     let value = from.map_or(Value::Null, |from| paths::from_now(place, from));
     vec![
-        ("changes", scene::changes(table, scene, solved).into()),
+        ("changes", scene::changes(table, scene, solved, whole).into()),
         ("complete", solved.equilibria.complete.into()),
         ("beyond", words::beyond(&solved.equilibria).into()),
         ("undecided", solved.equilibria.unresolved.len().into()),
@@ -99,7 +100,7 @@ fn failed(problems: &[String]) -> Vec<Field> {
 
 /// What holds for the whole table.
 fn constants(table: &Table<'_>) -> Vec<Field> {
-    let facts = provenance::facts(table).into_iter().map(|fact| (fact.key, joined(&fact.texts)));
+    let facts = provenance::facts(table, whole).into_iter().map(|fact| (fact.key, joined(&fact.texts)));
     let title = [("model", table.model.title.value.clone().into())];
     let end = [("interrupted", table.interrupted.into()), ("caution", words::CAUTION.into())];
     title.into_iter().chain(facts).chain(end).collect()

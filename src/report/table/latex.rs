@@ -5,6 +5,7 @@
 
 use super::columns::Glyphs;
 use super::layout::{Align, Head, filled, parts};
+use super::provenance::plain;
 use super::sheet::Sheet;
 use super::text::Page;
 use super::{Scene, Solved, Table, provenance, scene, words};
@@ -41,7 +42,7 @@ pub fn latex(table: &Table<'_>, page: Page) -> String {
 
 fn heading(table: &Table<'_>, page: &Page) -> String {
     let mut rows = Vec::new();
-    for fact in provenance::facts(table) {
+    for fact in provenance::facts(table, plain) {
         rows.extend(fact.texts.iter().map(|text| format!("{} & {} \\\\\n", fact.label, escaped(text, page))));
     }
     tabular("lp{0.75\\linewidth}", "", &rows.concat())
@@ -52,7 +53,7 @@ fn scenario(table: &Table<'_>, scene: &Scene, solved: &Solved, ids: &[String], p
     let (is_proof, verdict) = words::verdict(&solved.equilibria);
     let word = if is_proof { words::proof(true) } else { words::INCOMPLETE };
     let mut all = vec![
-        format!("Changes: {}.", escaped(&scene::changes(table, scene, solved), page)),
+        format!("Changes: {}.", escaped(&scene::changes(table, scene, solved, plain), page)),
         format!("\\textbf{{{word}}}: {verdict}"),
     ];
     all.extend(grids(&Sheet::new(table, &rows, Glyphs::Words), page));
@@ -107,16 +108,19 @@ fn number_or_text(text: &str, page: &Page) -> String {
     }
 }
 
-/// Words longer than this may be broken anywhere: hashes and paths.
+/// Words of more letters than this may be broken: hashes and paths.
 const BREAKABLE: usize = 30;
+
+/// Letters between two breaks.
+const PIECE: usize = 8;
 
 /// A text that TeX prints as it is, on one line.
 fn escaped(text: &str, page: &Page) -> String {
     let clean = page.clean(text);
     let word = |word: &str| {
-        let is_long = word.chars().count() > BREAKABLE;
-        let letters = word.chars().map(|c| if is_long { letter(c) + "\\allowbreak{}" } else { letter(c) });
-        letters.collect::<String>()
+        let letters: Vec<String> = word.chars().map(letter).collect();
+        let piece = if letters.len() > BREAKABLE { PIECE } else { BREAKABLE };
+        letters.chunks(piece).map(<[String]>::concat).collect::<Vec<_>>().join("\\allowbreak{}")
     };
     clean.split_whitespace().map(word).collect::<Vec<_>>().join(" ")
 }
@@ -153,7 +157,9 @@ mod tests {
         check("a\\b^c~d", "a\\textbackslash{}b\\textasciicircum{}c\\textasciitilde{}d");
         check("--scenario", "-{}-{}scenario");
         check("κοδ, größer", "κοδ, größer");
-        check(&"a".repeat(31), &"a\\allowbreak{}".repeat(31));
+        let broken = ["a".repeat(8), "a".repeat(8), "a".repeat(8), "a".repeat(7)].join("\\allowbreak{}");
+        check(&"a".repeat(31), &broken);
+        check(&"a".repeat(30), &"a".repeat(30));
     }
 
     #[test]

@@ -17,6 +17,9 @@ const NARROW: usize = 8;
 /// Longer words of headings are broken, or a name could make a column as wide as a page.
 const LONGEST: usize = 24;
 
+/// Beside the name of an equilibrium and the gaps, a cell may take the rest of the page.
+const BESIDE: usize = 10;
+
 /// What a colour repeats; it never says anything alone.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
 pub(super) enum Ink {
@@ -44,7 +47,7 @@ impl Ink {
 
     /// The text in this ink, where colour is wanted.
     pub(super) fn paint(self, text: &str, page: &Page) -> String {
-        match self.code().filter(|_| page.color) {
+        match self.code().filter(|_| page.color && !text.is_empty()) {
             Some(code) => format!("\u{1b}[{code}m{text}\u{1b}[0m"),
             None => text.to_owned(),
         }
@@ -101,10 +104,11 @@ pub(super) fn filled(heads: &[Head], rows: &[Vec<Cell>]) -> Vec<usize> {
     (0..heads.len()).filter(is_filled).collect()
 }
 
-/// A column whose cells all have the same width: lines of headings first, then a line for each row.
+/// A column whose lines all have the same width: those of the headings, then those of each row.
 struct Block {
     width: usize,
-    cells: Vec<Cell>,
+    heads: Vec<Cell>,
+    rows: Vec<Vec<Cell>>,
 }
 
 /// A grid. Columns that are empty in every row are left out; what does not fit the page goes on below, where the first
@@ -112,18 +116,15 @@ struct Block {
 pub(super) fn grid(heads: &[Head], rows: &[Vec<Cell>], page: &Page) -> String {
     let columns: Vec<Column> =
         filled(heads, rows).into_iter().map(|place| Column::new(&heads[place], rows, place, page)).collect();
-    let most = columns.iter().map(|column| column.title.len()).max().unwrap_or(0);
-    let blocks: Vec<Block> = columns.into_iter().map(|column| column.block(most)).collect();
-    let mut text = String::new();
-    for (place, part) in
-        parts(&blocks.iter().map(|block| block.width).collect::<Vec<_>>(), page.width).iter().enumerate()
-    {
-        if place > 0 {
-            text.push('\n');
-        }
-        text.push_str(&lines(&part.iter().filter_map(|&block| blocks.get(block)).collect::<Vec<_>>(), page));
-    }
-    text
+    let most = |lines: fn(&Column) -> usize| columns.iter().map(lines).max().unwrap_or(0);
+    let (titles, units) = (most(|column| column.title.len()), most(|column| column.unit.len()));
+    let blocks: Vec<Block> = columns.into_iter().map(|column| column.block(titles, units)).collect();
+    let widths: Vec<usize> = blocks.iter().map(|block| block.width).collect();
+    let shown = parts(&widths, page.width).into_iter().map(|part| {
+        let part: Vec<&Block> = part.iter().filter_map(|&place| blocks.get(place)).collect();
+        lines(&part, rows.len(), page)
+    });
+    shown.collect::<Vec<_>>().join("\n")
 }
 
 /// Columns of these widths divided among parts that fit a width; the first column is in every part.
@@ -147,44 +148,61 @@ pub(super) fn parts(widths: &[usize], width: usize) -> Vec<Vec<usize>> {
     all
 }
 
-/// A column before its cells have one width.
+/// A column before its lines have one width.
 struct Column {
     title: Vec<String>,
-    unit: String,
+    unit: Vec<String>,
     align: Align,
-    body: Vec<Cell>,
+    /// The lines of each row.
+    body: Vec<Vec<Cell>>,
 }
 
 impl Column {
     fn new(head: &Head, rows: &[Vec<Cell>], column: usize, page: &Page) -> Self {
-        let clean = |cell: &Cell| Cell { text: page.clean(&cell.text), ink: cell.ink };
-        let cells: Vec<Cell> = rows.iter().filter_map(|row| row.get(column)).map(clean).collect();
-        let body = match head.align {
-            Align::Left => cells,
-            Align::Point => by_point(cells),
+        let cells = rows.iter().filter_map(|row| row.get(column));
+        let cells = cells.map(|cell| Cell { text: page.clean(&cell.text), ink: cell.ink });
+        let room = page.width.saturating_sub(BESIDE);
+        let body: Vec<Vec<Cell>> = match head.align {
+            Align::Left => cells.map(|cell| broken_cell(&cell, room)).collect(),
+            Align::Point => by_point(cells.collect()).into_iter().map(|cell| vec![cell]).collect(),
         };
-        let unit = page.clean(&head.unit);
-        let widest = body.iter().map(|cell| cell.text.width()).chain([unit.width(), NARROW]).max().unwrap_or(0);
-        let words: Vec<String> = page.clean(&head.title).split_whitespace().flat_map(pieces).collect();
-        let title = wrapped(words.iter().map(String::as_str), 0, 0, widest);
-        Self { title: title.lines().map(str::to_owned).collect(), unit, align: head.align, body }
+        let widest = body.iter().flatten().map(|cell| cell.text.width()).chain([NARROW]).max().unwrap_or(0);
+        let head_lines = |text: &str| broken(&page.clean(text), widest);
+        Self { title: head_lines(&head.title), unit: head_lines(&head.unit), align: head.align, body }
     }
 
-    /// Its lines, with this many for the title, filled from below.
-    fn block(self, most: usize) -> Block {
-        let above = vec![String::new(); most - self.title.len()];
-        let heads = above.into_iter().chain(self.title).chain([self.unit]).map(Cell::new);
-        let mut cells: Vec<Cell> = heads.chain(self.body).collect();
-        let width = cells.iter().map(|cell| cell.text.width()).max().unwrap_or(0);
-        for cell in &mut cells {
-            let room = " ".repeat(width - cell.text.width());
+    /// Its lines, with so many for the title, filled from below, and for the unit.
+    fn block(self, titles: usize, units: usize) -> Block {
+        let blank = |count: usize| vec![String::new(); count];
+        let above = blank(titles.saturating_sub(self.title.len()));
+        let below = blank(units.saturating_sub(self.unit.len()));
+        let heads = above.into_iter().chain(self.title).chain(self.unit).chain(below).map(Cell::new);
+        let mut block = Block { width: 0, heads: heads.collect(), rows: self.body };
+        let cells = || block.heads.iter().chain(block.rows.iter().flatten());
+        block.width = cells().map(|cell| cell.text.width()).max().unwrap_or(0);
+        for cell in block.heads.iter_mut().chain(block.rows.iter_mut().flatten()) {
+            let room = " ".repeat(block.width - cell.text.width());
             cell.text = match self.align {
                 Align::Left => format!("{}{room}", cell.text),
                 Align::Point => format!("{room}{}", cell.text),
             };
         }
-        Block { width, cells }
+        block
     }
+}
+
+/// The lines of a text in a column.
+fn broken(text: &str, width: usize) -> Vec<String> {
+    let words: Vec<String> = text.split_whitespace().flat_map(pieces).collect();
+    wrapped(words.iter().map(String::as_str), 0, 0, width).lines().map(str::to_owned).collect()
+}
+
+/// A cell in as many lines as the page needs; blanks within a line stay where one is enough.
+fn broken_cell(cell: &Cell, room: usize) -> Vec<Cell> {
+    if cell.text.width() <= room {
+        return vec![cell.clone()];
+    }
+    broken(&cell.text, room).into_iter().map(|text| Cell { text, ink: cell.ink }).collect()
 }
 
 /// A word in pieces of bearable length.
@@ -204,25 +222,30 @@ fn by_point(cells: Vec<Cell>) -> Vec<Cell> {
     cells.into_iter().map(filled).collect()
 }
 
-fn lines(blocks: &[&Block], page: &Page) -> String {
-    let count = blocks.first().map_or(0, |block| block.cells.len());
-    let mut text = String::new();
-    for line in 0..count {
-        let cells: Vec<&Cell> = blocks.iter().filter_map(|block| block.cells.get(line)).collect();
-        let is_blank = cells.iter().all(|cell| cell.text.trim().is_empty());
-        // Lines of headings may be blank; a row never is.
-        if !is_blank {
-            text.push_str(&one_line(&cells, page));
+fn lines(blocks: &[&Block], rows: usize, page: &Page) -> String {
+    let heads = blocks.iter().map(|block| block.heads.len()).max().unwrap_or(0);
+    let heads = (0..heads).map(|line| one_line(blocks, |block| block.heads.get(line), page));
+    // Lines of headings may be blank; a row never is.
+    let mut text: String = heads.filter(|line| !line.trim().is_empty()).collect();
+    for row in 0..rows {
+        let count = blocks.iter().filter_map(|block| block.rows.get(row)).map(Vec::len).max().unwrap_or(0);
+        for line in 0..count {
+            text.push_str(&one_line(blocks, |block| block.rows.get(row)?.get(line), page));
         }
     }
     text
 }
 
-fn one_line(cells: &[&Cell], page: &Page) -> String {
+fn one_line<'b>(blocks: &[&'b Block], cell: impl Fn(&'b Block) -> Option<&'b Cell>, page: &Page) -> String {
     let mut line = String::new();
-    for cell in cells {
-        let (word, room) = cell.text.split_at(cell.text.trim_end().len());
-        let _ = write!(line, "{:GAP$}{}{room}", "", cell.ink.paint(word, page));
+    for block in blocks {
+        match cell(block) {
+            Some(cell) => {
+                let (word, room) = cell.text.split_at(cell.text.trim_end().len());
+                let _ = write!(line, "{:GAP$}{}{room}", "", cell.ink.paint(word, page));
+            }
+            None => line.push_str(&" ".repeat(GAP + block.width)),
+        }
     }
     format!("{}\n", line.trim_end())
 }
@@ -255,5 +278,13 @@ mod tests {
         let rows = [["E1", "1", "2", "3"].map(Cell::new).to_vec()];
         assert_eq!(grid(&heads, &rows, &page(16)), "      aaaa  bbbb\n  E1  1     2\n\n      cccc\n  E1  3\n");
         assert_eq!(grid(&heads[..2], &rows, &page(0)), "      aaaa\n  E1  1\n");
+    }
+
+    #[test]
+    fn what_is_too_wide_alone_is_broken() {
+        let heads = [Head::new("", Align::Left), Head { unit: "u".into(), ..Head::new("long title x", Align::Left) }];
+        let rows = [["E1", "aaaa bbbb cccc dddd"].map(Cell::new).to_vec(), ["E2", "e"].map(Cell::new).to_vec()];
+        let expected = "      long\n      title x\n      u\n  E1  aaaa bbbb\n      cccc dddd\n  E2  e\n";
+        assert_eq!(grid(&heads, &rows, &page(20)), expected);
     }
 }

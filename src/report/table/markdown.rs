@@ -6,6 +6,7 @@
 
 use super::columns::Glyphs;
 use super::layout::{Align, Cell, Head, filled};
+use super::provenance::plain;
 use super::sheet::Sheet;
 use super::text::Page;
 use super::{Scene, Solved, Style, Table, provenance, scene, words};
@@ -36,7 +37,7 @@ pub fn markdown(table: &Table<'_>, page: Page) -> String {
 
 fn heading(table: &Table<'_>, page: &Page) -> String {
     let mut lines = vec!["| what | how |".to_owned(), "|:--|:--|".to_owned()];
-    for fact in provenance::facts(table) {
+    for fact in provenance::facts(table, plain) {
         lines.extend(fact.texts.iter().map(|text| format!("| {} | {} |", fact.label, escaped(text, page))));
     }
     lines.join("\n")
@@ -47,7 +48,7 @@ fn scenario(table: &Table<'_>, scene: &Scene, solved: &Solved, ids: &[String], p
     let (is_proof, verdict) = words::verdict(&solved.equilibria);
     let word = if is_proof { words::proof(true) } else { words::INCOMPLETE };
     let mut parts = vec![
-        format!("Changes: {}", escaped(&scene::changes(table, scene, solved), page)),
+        format!("Changes: {}", escaped(&scene::changes(table, scene, solved, plain), page)),
         format!("**{word}**: {verdict}"),
     ];
     if !rows.is_empty() {

@@ -163,6 +163,15 @@ impl<'t> Row<'t> {
         self.assessed()?.linear.as_ref().ok()
     }
 
+    /// Why it has no linear part, where it has none.
+    fn why(&self) -> Option<&'static str> {
+        match self.assessed().map(|assessed| &assessed.linear) {
+            Some(Ok(_)) => None,
+            Some(Err(reason)) => Some(words::unavailable(*reason)),
+            None => words::why(self.equilibrium.derivative),
+        }
+    }
+
     fn measures(&self) -> Option<&'t Measures> {
         self.assessed().map(|assessed| &assessed.measures)
     }

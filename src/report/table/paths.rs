@@ -94,7 +94,15 @@ fn shares_in_words(place: Place<'_>, from: &FromNow) -> String {
     if from.shares.is_empty() {
         return String::new();
     }
-    let one = |(to, share): &(Destination, f64)| format!("{} of them {}", percent(*share), ends(place, to));
+    let one = |(to, share): &(Destination, f64)| {
+        let end = match to {
+            Destination::Equilibrium(_) => format!("reach {}", word(place, to)),
+            Destination::Cycle(_) => "settle on a cycle".to_owned(),
+            Destination::Loss(_) => format!("lead to the {}", word(place, to)),
+            Destination::NotSettled => "do not settle in time".to_owned(),
+        };
+        format!("{} {end}", percent(*share))
+    };
     let all: Vec<String> = from.shares.iter().map(one).collect();
     format!(" Of {} starts as uncertain as the survey, {}.", from.starts, all.join(", "))
 }

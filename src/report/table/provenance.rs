@@ -15,8 +15,8 @@ pub(super) struct Fact {
     pub(super) texts: Vec<String>,
 }
 
-/// Every fact but the title, in the order in which they are shown; only the ones there are.
-pub(super) fn facts(table: &Table<'_>) -> Vec<Fact> {
+/// Every fact but the title, in the order in which they are shown, with numbers written as told.
+pub(super) fn facts(table: &Table<'_>, number: fn(f64) -> String) -> Vec<Fact> {
     let one = |key, label, text: String| Fact { key, label, texts: vec![text] };
     let tables = table.tables.iter().map(|(name, sha256)| format!("{sha256} {name}")).collect();
     let set = if table.set.is_empty() { Vec::new() } else { vec![set(table)] };
@@ -26,17 +26,17 @@ pub(super) fn facts(table: &Table<'_>) -> Vec<Fact> {
         one("sha256", "SHA-256", table.sha256.to_owned()),
         Fact { key: "tables", label: "tables", texts: tables },
         Fact { key: "set", label: "set", texts: set },
-        one("time", "time", time(table)),
-        one("searched", "searched", search_box(table)),
+        one("time", "time", time(table, number)),
+        one("searched", "searched", search_box(table, number)),
         one("budget", "budget", budget(table)),
     ]
 }
 
-fn time(table: &Table<'_>) -> String {
+fn time(table: &Table<'_>, number: fn(f64) -> String) -> String {
     let unit = &table.model.time_unit.value;
     match table.model.time {
         TimeKind::Continuous => format!("continuous, in {unit}"),
-        TimeKind::Discrete { step } => format!("in steps of {} {unit}", plain(step)),
+        TimeKind::Discrete { step } => format!("in steps of {} {unit}", number(step)),
     }
 }
 
@@ -45,12 +45,12 @@ fn set(table: &Table<'_>) -> String {
 }
 
 /// The sides of the box; neighbours that share theirs are named together.
-fn search_box(table: &Table<'_>) -> String {
+fn search_box(table: &Table<'_>, number: fn(f64) -> String) -> String {
     let mut groups: Vec<(Vec<&str>, String)> = Vec::new();
     for (species, bound) in table.model.species.iter().zip(table.bounds) {
         let unit = species.unit.as_ref().map_or(String::new(), |unit| format!(" {}", unit.value));
         let chosen = if bound.chosen { " (chosen)" } else { "" };
-        let range = format!("{} to {}{unit}{chosen}", plain(bound.lower), plain(bound.upper));
+        let range = format!("{} to {}{unit}{chosen}", number(bound.lower), number(bound.upper));
         match groups.last_mut() {
             Some((symbols, shared)) if *shared == range => symbols.push(&species.symbol),
             _ => groups.push((vec![&species.symbol], range)),
@@ -63,8 +63,13 @@ fn budget(table: &Table<'_>) -> String {
     format!("{} s for each scenario, {} boxes on each face", table.limits.seconds, table.limits.boxes)
 }
 
+/// A number that reads back the same; zero has no minus.
+pub(super) fn whole(x: f64) -> String {
+    format!("{}", x + 0.0)
+}
+
 /// A number as the file may have it, where that is short.
 pub(super) fn plain(x: f64) -> String {
-    let exact = format!("{}", x + 0.0);
+    let exact = whole(x);
     if exact.len() <= 7 { exact } else { human(x) }
 }

@@ -6,7 +6,6 @@ use crate::diag::render::position;
 use crate::model::Model;
 
 use super::number::{human, human_above, human_below};
-use super::provenance::plain;
 use super::{Row, Scene, Solved, Table, paths, words};
 
 /// Undecided parts that are listed for people; the search may have left thousands.
@@ -17,14 +16,14 @@ pub(super) fn name<'m>(model: &'m Model, scene: &Scene) -> &'m str {
     model.scenarios.get(scene.scenario).map_or("", |scenario| &scenario.name)
 }
 
-/// What the scenario changes.
-pub(super) fn changes(table: &Table<'_>, scene: &Scene, solved: &Solved) -> String {
+/// What the scenario changes, with numbers written as told.
+pub(super) fn changes(table: &Table<'_>, scene: &Scene, solved: &Solved, number: fn(f64) -> String) -> String {
     let Some(scenario) = table.model.scenarios.get(scene.scenario) else { return String::new() };
     let without = scenario.without.iter().map(|name| format!("without {}", name.value));
     let values = scenario
         .values
         .iter()
-        .filter_map(|(id, _)| Some(format!("{} = {}", table.parameter(*id), plain(*solved.values.get(id.0)?))));
+        .filter_map(|(id, _)| Some(format!("{} = {}", table.parameter(*id), number(*solved.values.get(id.0)?))));
     let harvests = scenario.harvest.iter().map(|harvest| format!("harvest {}", harvest.name));
     let processes = scenario.processes.iter().map(|process| format!("process {}", process.name));
     let all: Vec<String> = without.chain(values).chain(harvests).chain(processes).collect();

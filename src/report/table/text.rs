@@ -8,6 +8,7 @@ use crate::model::Model;
 use super::super::layout::paragraph;
 use super::columns::Glyphs;
 use super::layout::{Ink, grid};
+use super::provenance::plain;
 use super::sheet::Sheet;
 use super::{Scene, Solved, Style, Table, provenance, scene, words};
 
@@ -72,7 +73,7 @@ fn heading(table: &Table<'_>, page: &Page) -> String {
         text.push_str(&page.paragraph("", note, 0));
     }
     text.push('\n');
-    for fact in provenance::facts(table) {
+    for fact in provenance::facts(table, plain) {
         for (place, body) in fact.texts.iter().enumerate() {
             let label = if place == 0 { fact.label } else { "" };
             text.push_str(&page.paragraph(&format!("  {label}"), body, ENTRIES));
@@ -91,7 +92,7 @@ fn title(model: &Model, scene: &Scene, page: &Page) -> String {
 
 fn scenario(table: &Table<'_>, scene: &Scene, solved: &Solved, ids: &[String], page: &Page) -> String {
     let rows = table.rows(scene, solved, ids);
-    let mut text = page.paragraph("", &scene::changes(table, scene, solved), 2);
+    let mut text = page.paragraph("", &scene::changes(table, scene, solved, plain), 2);
     text.push_str(&verdict(&solved.equilibria, page));
     if !rows.is_empty() {
         let glyphs = if page.style == Style::Ascii { Glyphs::Ascii } else { Glyphs::Unicode };

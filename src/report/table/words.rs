@@ -31,13 +31,19 @@ pub(super) fn meanings(table: &Table<'_>) -> Vec<(&'static str, &'static str)> {
     let any_type = |proven| linear().any(|linear| linear.kind_proven == proven || linear.stable_proven == proven);
     let is_open = solved().any(|solved| !solved.equilibria.unresolved.is_empty());
     let proved = if any_type(true) { PROVED_TYPE } else { PROVED };
+    let numerical = if linear().next().is_some() { NUMERICAL_MEASURES } else { NUMERICAL };
     let all = [
         (any_state(true) || any_type(true), proof(true), proved),
-        (any_state(false) || any_type(false), proof(false), "computed, but nothing is proved about it."),
+        (any_state(false) || linear().next().is_some(), proof(false), numerical),
         (is_open, UNDECIDED, "a part of the search box that may hold equilibria or none."),
     ];
     all.into_iter().filter_map(|(is_used, word, meaning)| is_used.then_some((word, meaning))).collect()
 }
+
+const NUMERICAL: &str = "computed, but nothing is proved about it.";
+
+const NUMERICAL_MEASURES: &str = "computed, but nothing is proved about it; so is every number but those of states that \
+     are proved.";
 
 const PROVED: &str = "exactly one equilibrium lies within the error given, relative to each abundance.";
 

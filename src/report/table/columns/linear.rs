@@ -2,7 +2,7 @@
 
 use serde_json::{Value, json};
 
-use crate::analysis::linearise::{Dimensions, Linearisation, Nonlinear};
+use crate::analysis::linearise::{Dimensions, Kind, Linearisation, Nonlinear};
 use crate::report::kinds::{self, SPIRALS};
 
 use super::super::layout::{Align, Cell, Head, Ink};
@@ -43,7 +43,8 @@ pub(super) static COLUMNS: &[Column] = &[
     Column {
         id: "type",
         unit: Unit::None,
-        help: "type by the linear part alone: node, spiral, saddle, centre and so on, and whether that is proved",
+        help: "type by the linear part alone: node, spiral, saddle, centre and so on, and whether that is proved; for people \
+               also why there is none",
         shown: Shown::Everywhere,
         title: "type",
         keys: &[
@@ -129,16 +130,25 @@ fn complex(re: f64, im: f64) -> String {
 }
 
 fn kind(row: &Row<'_>, glyphs: Glyphs) -> Cell {
-    let Some(linear) = row.linear() else { return Cell::new("") };
+    let Some(linear) = row.linear() else {
+        return Cell::inked(row.why().map_or_else(String::new, |why| format!("none: {why}")), Ink::Undecided);
+    };
     let look = kinds::of(linear.kind);
     let winds = if look.spirals { SPIRALS } else { ' ' };
-    let word = format!("{}, {}", look.word, words::proof(linear.kind_proven));
-    let text = match glyphs {
-        Glyphs::Unicode => format!("{}{winds} {word}", look.glyph),
-        Glyphs::Ascii => format!("{}{winds} {word}", look.ascii),
-        Glyphs::Words => word,
+    let (proof, ink) = match (linear.kind, linear.kind_proven) {
+        (Kind::Undecided, true) => (", proved critical", Ink::Undecided),
+        (Kind::Undecided, false) => ("", Ink::Undecided),
+        (_, true) => (", proved", Ink::Proved),
+        (_, false) => (", numerical", Ink::Numerical),
     };
-    Cell::inked(text, Ink::of(linear.kind_proven))
+    Cell::inked(
+        match glyphs {
+            Glyphs::Unicode => format!("{}{winds} {}{proof}", look.glyph, look.word),
+            Glyphs::Ascii => format!("{}{winds} {}{proof}", look.ascii, look.word),
+            Glyphs::Words => format!("{}{proof}", look.word),
+        },
+        ink,
+    )
 }
 
 fn stable(linear: &Linearisation) -> Cell {

@@ -32,7 +32,8 @@ pub(super) static COLUMNS: &[Column] = &[
         Unit::Time,
         Shown::Everywhere,
         &[key("period", Get::Number(|row| row.measures()?.period))],
-        "length of a swing on the way, 2 pi/|Im| of the leading eigenvalue; none where it is real",
+        "length of a swing on the way, 2 pi/|Im| of the leading eigenvalue, in a map 2 pi step/|arg|; none where there is \
+         no swing",
     ),
     number(
         "damping_ratio",

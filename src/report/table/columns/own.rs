@@ -5,7 +5,7 @@ use serde_json::{Map, Value, json};
 use crate::analysis::measures::Group;
 
 use super::super::layout::{Align, Cell, Head, Ink};
-use super::super::{Row, Table, exact, optional, words};
+use super::super::{Row, Table, exact, optional};
 use super::measures::peak;
 use super::path::{Get, Path, keyed};
 use super::{Cells, Column, Shown, Unit, key, number};
@@ -15,14 +15,12 @@ pub(super) static COLUMNS: &[Column] = &[
         id: "why",
         unit: Unit::None,
         help: "why there is no linear part, where there is none: no derivative, a kink, eigenvalues that did not come out",
-        shown: Shown::Everywhere,
+        shown: Shown::Files,
         title: "linear part",
-        keys: &[key("why", Get::One(|row| json!(why(row))))],
+        keys: &[key("why", Get::One(|row| json!(row.why())))],
         cells: Cells::Own {
             heads: |_| vec![Head::new("linear part", Align::Left)],
-            cells: |row, _| {
-                vec![Cell::inked(why(row).map_or(String::new(), |why| format!("none: {why}")), Ink::Undecided)]
-            },
+            cells: |row, _| vec![Cell::inked(row.why().unwrap_or(""), Ink::Undecided)],
         },
     },
     number(
@@ -81,14 +79,6 @@ pub(super) static COLUMNS: &[Column] = &[
         },
     },
 ];
-
-fn why(row: &Row<'_>) -> Option<&'static str> {
-    match row.assessed().map(|assessed| &assessed.linear) {
-        Some(Ok(_)) => None,
-        Some(Err(reason)) => Some(words::unavailable(*reason)),
-        None => words::why(row.equilibrium.derivative),
-    }
-}
 
 /// The populations that have several stages, in the order of their first.
 fn populations<'t>(table: &Table<'t>) -> Vec<&'t str> {
