@@ -148,11 +148,10 @@ fn of_three(entries: &[f64; 9]) -> Result<Vec<Complex<f64>>, Unsolved> {
     balance_into(&mut near, &mut [0; 3]);
     let exponent = exponent_of(largest(&near)).unwrap_or(0);
     let near = near.map(|x| times_power(x, -exponent));
-    let values = match three::values(&near) {
-        Some(values) => values.to_vec(),
-        None => general::values(&near, 3)?,
-    };
-    Ok(values.into_iter().map(|z| unscaled(z, exponent)).collect())
+    match three::values(&near) {
+        Some(values) => Ok(values.map(|z| unscaled(z, exponent)).to_vec()),
+        None => Ok(general::values(&near, 3)?.into_iter().map(|z| unscaled(z, exponent)).collect()),
+    }
 }
 
 /// Of an irreducible block of order three or more.

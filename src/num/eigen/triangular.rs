@@ -25,6 +25,8 @@ pub(super) struct Triangular {
     pub(super) sizes: Vec<f64>,
     /// The index of A that row k of S⁻¹ A S has.
     pub(super) order: Vec<usize>,
+    /// First place and order of each block.
+    blocks: Vec<(usize, usize)>,
     /// Entry k of a vector of A is 2^`units`\[k\] times that of S⁻¹ A S.
     pub(super) units: Vec<i32>,
 }
@@ -53,6 +55,7 @@ impl Triangular {
             values: Vec::with_capacity(n),
             sizes: Vec::with_capacity(n),
             order: parts.concat(),
+            blocks: Vec::with_capacity(parts.len()),
             units: Vec::with_capacity(n),
         };
         for block in &blocks {
@@ -71,8 +74,12 @@ impl Triangular {
             (0..start).flat_map(|i| (0..m).filter_map(move |j| exponent_of(entry(i, j)).map(|e| e + power(i, j))));
         let shift = sizes.max().map_or(0, |most| most.max(0));
         let above = DMatrix::from_fn(start, m, |i, j| Complex::new(times_power(entry(i, j), power(i, j) - shift), 0.0));
-        let coupled = self.q.view((0, 0), (start, start)).ad_mul(&(above * &block.q));
-        self.t.view_mut((0, start), (start, m)).copy_from(&coupled);
+        let right = above * &block.q;
+        for &(at, order) in &self.blocks {
+            let left = self.q.view((at, at), (order, order));
+            self.t.view_mut((at, start), (order, m)).copy_from(&left.ad_mul(&right.rows(at, order)));
+        }
+        self.blocks.push((start, m));
         let by = block.exponent - exponent;
         self.t.view_mut((start, start), (m, m)).copy_from(&block.t.map(|z| scaled(z, by)));
         self.q.view_mut((start, start), (m, m)).copy_from(&block.q);

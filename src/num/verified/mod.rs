@@ -2,7 +2,7 @@
 //! circle how many lie, and whether the leading ones are real.
 //!
 //! [`half_plane`], [`unit_circle`] and [`leading`] are the ways in. The matrix is divided along entries that are exactly 0;
-//! a block of order two or three is judged by its characteristic polynomial (`small`), any block by discs around approximate
+//! a block of order one to three is judged by its characteristic polynomial (`small`), any block by discs around approximate
 //! eigenvalues (`discs`), and what is defective or nearly so by the inertia of a quadratic form (`inertia`). Nothing here says "critical": a proof that an
 //! eigenvalue lies *on* the border cannot come from bounds.
 

@@ -1,4 +1,4 @@
-//! Blocks of order two and three, from the coefficients of their characteristic polynomial.
+//! Blocks of order one, and of order two and three from the coefficients of their characteristic polynomial.
 //!
 //! Routh (1877) and Hurwitz (1895) count roots on each side of the axis by signs of the first column of Routh's array; the
 //! unit circle is brought to the axis by z = (1 + w)/(1 − w), which gives the conditions of Jury (1974). In bounds, so a sign
@@ -10,13 +10,23 @@ use super::discs::Disc;
 use super::{Border, Counts};
 use crate::num::interval::Interval;
 
-/// Counts for a block of order two or three; `None` for others and where a sign is open.
+/// Counts for a block of order one to three; `None` for others and where a sign is open.
 pub(super) fn counts(entries: &[Interval], border: Border) -> Option<Counts> {
     match *entries {
+        [a] => of_one(a, border),
         [a, b, c, d] => of_two([a, b, c, d], border),
         [_, _, _, _, _, _, _, _, _] => of_three(entries, border),
         _ => None,
     }
+}
+
+fn of_one(a: Interval, border: Border) -> Option<Counts> {
+    let beyond = match border {
+        Border::Axis => a,
+        Border::Circle => a.abs() - Interval::ONE,
+    };
+    let above = usize::from(sign(beyond)? > 0);
+    Some(Counts { below: 1 - above, above })
 }
 
 /// Roots of x w² + y w + z.

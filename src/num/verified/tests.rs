@@ -170,6 +170,12 @@ fn every_matrix_between_the_bounds_counts() {
     check(&[minus, plus, [-2.0, -1.0], minus], 2, Counts { below: 2, above: 0 });
     check(&[[-1.5, 0.75], plus, [-2.0, -1.0], [-0.5, -0.5]], 2, Counts::default());
     check(&[minus, plus, plus, [-0.25, 0.25]], 2, Counts { below: 1, above: 1 });
+    // As close to the border as f64 gets.
+    check(&[[5e-324, 1.0]], 1, Counts { below: 0, above: 1 });
+    check(&[[-1.0, 0.0]], 1, Counts::default());
+    let inside = Interval::new(-1f64.next_down(), 0.5);
+    assert_eq!(unit_circle(&[inside], 1), Some(Counts { below: 1, above: 0 }));
+    assert_eq!(unit_circle(&[Interval::new(-1.0, 0.5)], 1), Some(Counts::default()));
     assert_eq!(half_plane(&[Interval::ENTIRE], 1), None);
     assert_eq!(unit_circle(&[Interval::EMPTY], 1), None);
 }
