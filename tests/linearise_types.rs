@@ -5,7 +5,7 @@
 mod common;
 
 use common::Source;
-use common::linear::{Time, around_one, at, mixed};
+use common::linear::{Time, around_one, at, mixed, supposed};
 use common::text::ModelText;
 use restpoint::analysis::linearise::{Kind, Linearisation, Unavailable};
 
@@ -168,6 +168,69 @@ fn several_species() {
     check_mixed(Map, &[&[0.5, 0.25, -0.25, 0.5], &[0.75]], StableNode, [3, 0, 0]);
     check_mixed(Map, &[&[0.5, 0.25, -0.25, 0.5], &[1.25]], Saddle, [2, 0, 1]);
     check_mixed(Map, &[&[0.5, 1.0, -1.0, 0.5], &[2.0]], UnstableNode, [0, 0, 3]);
+}
+
+#[test]
+fn defective_matrices_have_proved_stability() {
+    // One Jordan block of order m and eigenvalue λ: no type follows from bounds, but all attract, or none does.
+    let block = |m: usize, value: f64| -> Vec<f64> {
+        let entry = |(i, j): (usize, usize)| if i == j { value } else { f64::from(u8::from(j == i + 1)) };
+        (0..m * m).map(|k| entry((k / m, k % m))).collect()
+    };
+    let check = |time, m: usize, value: f64, stable: bool| {
+        let matrix = mixed(&block(m, value), m);
+        let found = at(&around_one(&matrix, m, time), &vec![1.0; m]);
+        assert_eq!(found.stable, Some(stable), "{time:?} {m} {value}: {:?}", found.spectrum.values);
+        assert!(found.stable_proven, "{time:?} {m} {value}: {found:?}");
+        let dimensions = found.dimensions;
+        let expected = if stable { [m, 0, 0] } else { [0, 0, m] };
+        assert_eq!([dimensions.stable, dimensions.centre, dimensions.unstable], expected, "{time:?} {m} {value}");
+    };
+    for m in 2..=5 {
+        check(Flow, m, -1.0, true);
+        check(Flow, m, 1.0, false);
+        check(Map, m, 0.5, true);
+        check(Map, m, -0.5, true);
+        check(Map, m, 2.0, false);
+    }
+}
+
+#[test]
+fn nothing_is_proved_of_what_may_not_be_there() {
+    let stable = [-1.0, 2.0, -2.0, -1.0];
+    let found = supposed(&around_one(&stable, 2, Flow), &[1.0, 1.0], false);
+    assert_eq!((found.kind, found.stable), (StableSpiral, Some(true)));
+    assert!(!found.kind_proven && !found.stable_proven);
+    let centre = supposed(&around_one(&[0.0, 1.0, -1.0, 0.0], 2, Flow), &[1.0, 1.0], false);
+    assert_eq!((centre.kind, centre.stable), (Centre, None));
+    assert!(!centre.kind_proven && !centre.stable_proven && centre.nonlinear.is_some_and(|found| !found.proven));
+}
+
+#[test]
+fn large_communities_are_computed_but_not_proved() {
+    // Each eats the next, all the same: −1 on the diagonal, 1 and −1 beside it; so −1 plus what is imaginary.
+    let n = 48;
+    let entry = |k: usize| match (k / n, k % n) {
+        (i, j) if i == j => -1.0,
+        (i, j) if j == i + 1 => 1.0,
+        (i, j) if i == j + 1 => -1.0,
+        _ => 0.0,
+    };
+    let matrix: Vec<f64> = (0..n * n).map(entry).collect();
+    let found = at(&around_one(&matrix, n, Flow), &vec![1.0; n]);
+    assert_eq!((found.kind, found.stable, found.dimensions.stable), (StableSpiral, Some(true), n));
+    assert!(found.enclosure.is_empty() && !found.kind_proven && !found.stable_proven);
+    assert!(found.spectrum.values.iter().all(|value| (value.re + 1.0).abs() < 1e-12), "{:?}", found.spectrum.values);
+}
+
+#[test]
+fn huge_and_tiny_rates_are_classified() {
+    for size in [1e200, 1e-200] {
+        let found = at(&around_one(&[-size, 2.0 * size, -2.0 * size, -size], 2, Flow), &[1.0, 1.0]);
+        assert_eq!((found.kind, found.stable), (StableSpiral, Some(true)), "{size}: {found:?}");
+        let found = at(&around_one(&[size, 2.0 * size, 2.0 * size, size], 2, Flow), &[1.0, 1.0]);
+        assert_eq!((found.kind, found.stable), (Saddle, Some(false)), "{size}: {found:?}");
+    }
 }
 
 /// Whole numbers, so that sums and products of a few of them are exact.

@@ -21,11 +21,16 @@ pub fn linear(read: &mut Read, scenario: usize) -> Vec<Linear> {
 
 /// The linear part at a state of which it is known that the equations are exactly 0 there.
 pub fn at(text: &ModelText, state: &[f64]) -> Linearisation {
+    supposed(text, state, true)
+}
+
+/// The same, whether or not it is known.
+pub fn supposed(text: &ModelText, state: &[f64], proven: bool) -> Linearisation {
     let mut read = text.read();
     let enclosure: Vec<Interval> = state.iter().map(|&x| Interval::point(x)).collect();
     let rates = read.at(0, &enclosure).rows;
     assert!(rates.iter().all(|rate| rate.contains_zero()), "{}: {state:?} is no equilibrium", text.yaml());
-    let equilibrium = Equilibrium { state: state.to_vec(), enclosure, proven: true, derivative: Derivative::Exists };
+    let equilibrium = Equilibrium { state: state.to_vec(), enclosure, proven, derivative: Derivative::Exists };
     let linear = lineariser(&mut read, 0).at(&equilibrium);
     linear.unwrap_or_else(|why| panic!("{}: {why:?}", text.yaml()))
 }
@@ -36,8 +41,10 @@ fn lineariser(read: &mut Read, scenario: usize) -> Lineariser {
     Lineariser::new(&mut Subject::new(&read.model, &read.system.graph, &read.system.plans[scenario], sides))
 }
 
-/// The symbols of models that are made here, in order.
-const SYMBOLS: [&str; 8] = ["u", "v", "w", "x", "y", "z", "s", "t"];
+/// The symbols of models that are made here.
+fn symbol(i: usize) -> String {
+    format!("x{i}")
+}
 
 /// Whether time runs or steps.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -49,12 +56,12 @@ pub enum Time {
 /// The linear equations with this matrix, around the state where every abundance is 1.
 pub fn around_one(matrix: &[f64], n: usize, time: Time) -> ModelText {
     let row = |i: usize| {
-        let terms: Vec<String> = (0..n).map(|j| format!("({})*({} - 1)", matrix[i * n + j], SYMBOLS[j])).collect();
+        let terms: Vec<String> = (0..n).map(|j| format!("({})*({} - 1)", matrix[i * n + j], symbol(j))).collect();
         let sum = terms.join(" + ");
         if time == Time::Map { format!("1 + {sum}") } else { sum }
     };
-    let rows: Vec<String> = (0..n).map(row).collect();
-    let rows: Vec<(&str, &str)> = SYMBOLS.into_iter().zip(rows.iter().map(String::as_str)).collect();
+    let rows: Vec<(String, String)> = (0..n).map(|i| (symbol(i), row(i))).collect();
+    let rows: Vec<(&str, &str)> = rows.iter().map(|(symbol, row)| (symbol.as_str(), row.as_str())).collect();
     ModelText { discrete: time == Time::Map, ..ModelText::new("linear", "3", &rows) }
 }
 

@@ -26,7 +26,8 @@ pub(super) fn errors(numbers: &[f64], enclosure: &[Interval], spectrum: &Spectru
     let rounding = BACKWARD * n as f64 * f64::EPSILON;
     let radius = |k: usize| enclosure.get(k).map_or(0.0, |entry| entry.radius());
     let uncertain = (0..n * n).map(|k| radius(k) * scale[k % n] / scale[k / n]).fold(0.0, f64::max);
-    let most = (n as f64 * (rounding * largest + uncertain) * largest).sqrt();
+    // The roots apart, for their product may overflow.
+    let most = (n as f64 * (rounding * largest + uncertain)).sqrt() * largest.sqrt();
     let error = |k: usize| {
         let Some(vectors) = &spectrum.vectors else { return most };
         let sum: f64 = (0..n * n)

@@ -72,7 +72,7 @@ impl Planar {
         if discriminant.hi() < 0.0 {
             return vec![self.pair(border, middle, half(square_root(-discriminant)))];
         }
-        let spread = half(square_root(Interval::point(discriminant.mag())));
+        let spread = half(square_root(discriminant.abs()));
         let around = Interval::new(0.0, spread.hi());
         vec![Place { re: middle + around.hull(-around), im: around, shape: Shape::Unknown }]
     }
