@@ -147,7 +147,9 @@ impl<'k> Tally<'k> {
             self.left_open(subject, &face, &open);
         } else {
             // Wherever the others go, these are losses.
-            open.iter().for_each(|_| self.count(Destination::NotSettled, lost));
+            for _ in &open {
+                self.count(Destination::NotSettled, lost);
+            }
         }
         for (coordinate, states) in emptied.into_iter().enumerate().filter(|(_, states)| !states.is_empty()) {
             let species = face.present[coordinate];
