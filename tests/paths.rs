@@ -7,11 +7,15 @@ use common::cases;
 use common::references::reference;
 use common::text::{ModelText, Read};
 use restpoint::analysis::equilibria::{Budget, Equilibrium, OneByOne, all};
-use restpoint::analysis::paths::{Cycle, Destination, Ended, FromNow, follow, from_now, settles};
+use restpoint::analysis::linearise::{Dimensions, Kind, Linearisation};
+use restpoint::analysis::paths::{
+    Cycle, Destination, Ended, FromNow, follow, from_now, is_unstable_coexistence, settles,
+};
 use restpoint::analysis::subject::Subject;
 use restpoint::model::load::{NoFiles, load};
 use restpoint::model::system::System;
 use restpoint::model::{Model, SpeciesId};
+use restpoint::num::eigen::spectrum;
 
 const BUDGET: Budget<'_> = Budget { boxes: 50_000, stop: &|| false, workers: &OneByOne, observer: None };
 const NEVER: &dyn Fn() -> bool = &|| false;
@@ -31,6 +35,29 @@ fn with<T>(read: &Read, scenario: usize, work: impl FnOnce(&mut Subject<'_>, &[E
     let (graph, problem) = subject.problem();
     let found = all(graph, &problem, &BUDGET);
     work(&mut subject, &found.list)
+}
+
+/// The linear part of an equilibrium as far as paths need it.
+fn linearised(subject: &Subject<'_>, equilibrium: &Equilibrium) -> Linearisation {
+    let n = subject.species();
+    let tape = subject.plan.tape(&subject.graph);
+    let mut run = tape.start_gradient::<f64>(&subject.plan.values);
+    run.at(&equilibrium.state);
+    let row = |i| run.gradient(i).map_or_else(|| vec![0.0; n], <[f64]>::to_vec);
+    let jacobian: Vec<f64> = (0..n).flat_map(row).collect();
+    let spectrum = spectrum(&jacobian, n).expect("eigenvalues");
+    Linearisation {
+        stable: Some(spectrum.values.iter().all(|value| value.re < 0.0)),
+        jacobian,
+        enclosure: Vec::new(),
+        spectrum,
+        kind: Kind::Undecided,
+        kind_proven: false,
+        stable_proven: false,
+        dimensions: Dimensions::default(),
+        alternating: false,
+        nonlinear: None,
+    }
 }
 
 /// Where a path released beside the equilibrium with most species goes.
@@ -300,4 +327,92 @@ fn no_survey_no_answer() {
     assert!(with(&model, 0, |subject, list| from_now(subject, list, &vec![None; list.len()], NEVER)).is_none());
     let part = read(&(prey_and_predator("4") + "now: {N: 1}\n"));
     assert!(with(&part, 0, |subject, list| from_now(subject, list, &vec![None; list.len()], NEVER)).is_none());
+}
+
+/// Two competitors that exclude each other (Gause): from beside the saddle one of them is lost, on either side. A spiral
+/// that repels: both sides wind to the same cycle, whatever vector they start along.
+#[test]
+fn released_along_the_leading_vector() {
+    let settled = |model: &Read| {
+        with(model, 0, |subject, list| {
+            let linear: Vec<Linearisation> = list.iter().map(|e| linearised(subject, e)).collect();
+            let last = list.len() - 1;
+            let asked: Vec<bool> =
+                list.iter().zip(&linear).map(|(e, l)| is_unstable_coexistence(subject, e, l)).collect();
+            assert!(asked[last] && asked[..last].iter().all(|asked| !asked), "{asked:?}");
+            let linear: Vec<Option<&Linearisation>> = linear.iter().map(Some).collect();
+            (settles(subject, list, &linear, last, NEVER), list.to_vec())
+        })
+    };
+    let rivals = [("N", "N*(1 - (N + 1.4*P)/100)"), ("P", "P*(1 - (P + 1.4*N)/100)")];
+    let (to, list) = settled(&ModelText::new("rivals", "300", &rivals).read());
+    let Destination::Equilibrium(index) = to else { panic!("{to:?}") };
+    assert_eq!(list[index].state.iter().filter(|x| **x > 0.0).count(), 1, "{:?}", list[index]);
+    let (to, _) = settled(&read(&prey_and_predator("4")));
+    close(cycle(to).period, reference("prey and predator 4", "period"), 1e-6);
+}
+
+/// An Allee effect, one species: above the threshold it grows, below it is gone. The side that loses more is told.
+#[test]
+fn of_two_sides_the_one_that_loses_more() {
+    let text = ModelText::new("Allee", "200", &[("N", "N*(N/20 - 1)*(1 - N/100)")]);
+    with(&text.read(), 0, |subject, list| {
+        let linear = vec![None; list.len()];
+        assert_eq!(settles(subject, list, &linear, 1, NEVER), Destination::Equilibrium(0));
+    });
+}
+
+/// Whatever the equations, an answer comes, and none is made up.
+#[test]
+fn odd_equations_end() {
+    let check = |rows: [&str; 2], expected: Destination| {
+        let [n, p] = rows;
+        let yaml = format!(
+            "title: odd\ntime: yr\nspecies:\n  N: {{upper: 100}}\n  P: {{upper: 100}}\n\
+             change: {{N: '{n}', P: '{p}'}}\nnow: {{N: {{value: 5, cv: 0.2}}, P: {{value: 5, cv: 0.2}}}}\n"
+        );
+        let (found, _) = now(&read(&yaml));
+        assert_eq!(found.reaches, expected, "{rows:?}");
+        let total: f64 = found.shares.iter().map(|(_, share)| share).sum();
+        close(total, 1.0, 1e-12);
+        assert!(found.lowest.iter().all(|low| low.is_finite() && *low >= 0.0), "{:?}", found.lowest);
+        assert!(found.time.is_none_or(f64::is_finite));
+    };
+    // Without bound, in finite time, or for ever.
+    check(["N*N", "P*(1 - P)"], Destination::NotSettled);
+    check(["N", "P*(1 - P)"], Destination::NotSettled);
+    // Undefined once N has fallen below 4.
+    check(["-N*sqrt(N - 4)", "P*(1 - P) + ln(N - 4)*0"], Destination::NotSettled);
+    // √N is gone after 2 √5 years.
+    check(["-sqrt(N)", "P*(1 - P)"], Destination::Loss(vec![SpeciesId(0)]));
+    // Both feed each other as stages do; they fade away together.
+    check(["P - 2*N", "N - 2*P"], Destination::Equilibrium(0));
+    // A million times faster than its prey.
+    check(["N*(1 - N/10) - 0.1*N*P", "1000000*(N - P)"], Destination::Equilibrium(1));
+}
+
+/// With nobody there, nobody comes; with quotas of all, all are lost; a quota taken of a map's next state as well.
+#[test]
+fn nobody_is_left() {
+    let check = |text: &str, expected: Destination, time: f64| {
+        let (found, _) = now(&read(text));
+        assert_eq!(found.reaches, expected, "{text}");
+        close(found.time.unwrap(), time, 1e-6);
+        for (to, share) in &found.shares {
+            assert!(*to == expected && (*share - 1.0).abs() < 1e-12, "{:?}", found.shares);
+        }
+    };
+    let head = "title: a\ntime: yr\nspecies:\n  N: {upper: 100}\n  P: {upper: 100}\n";
+    let grow = "change: {N: N*(1 - N/50), P: P*(1 - P/50)}\n";
+    check(&format!("{head}{grow}now: {{N: 0, P: 0}}\n"), Destination::Equilibrium(0), 0.0);
+    let both = Destination::Loss(vec![SpeciesId(0), SpeciesId(1)]);
+    let cloud = "now: {N: {value: 6, cv: 0.1}, P: {value: 12, cv: 0.1}}\n";
+    let quotas = "change: {N: 0, P: 0}\nharvest: {quota: {takes: {N: 2, P: 3}}}\n";
+    check(&format!("{head}{quotas}{cloud}"), both.clone(), 4.0);
+    let head = head.replace("time: yr", "time: {unit: yr, step: 1}");
+    // 6, 3.5, 1, −1.5: lost in the third year; 12, 7.5, 3, −1.5 likewise.
+    let quotas = "next: {N: N, P: P}\nharvest: {quota: {takes: {N: 2.5, P: 4.5}}}\n";
+    check(&format!("{head}{quotas}now: {{N: 6, P: 12}}\n"), both, 3.0);
+    let fade = "next: {N: 0.5*N, P: 0.5*P}\n";
+    check(&format!("{head}{fade}{}", "now: {N: 16, P: 16}\n"), Destination::Equilibrium(0), 4.0);
 }

@@ -67,7 +67,9 @@ impl Basin {
             Motion::Flow => {
                 // Time in the unit of the fastest rate, so that P is near 1.
                 let fastest = slopes.iter().fold(0.0f64, |most, slope| most.max(slope.abs()));
-                slopes.iter_mut().for_each(|slope| *slope /= fastest);
+                for slope in &mut slopes {
+                    *slope /= fastest;
+                }
                 lyapunov(&slopes, &one, n)?
             }
             Motion::Map => stein(&slopes, &one, n)?,

@@ -190,7 +190,7 @@ impl Field<'_> {
         let face = self.face;
         let run = self.gradients.get_or_insert_with(|| face.tape.start_gradient(&face.values));
         let domain = run.at(x);
-        for (i, row) in out.chunks_exact_mut(n).enumerate() {
+        for (i, row) in out.chunks_exact_mut(n.max(1)).enumerate() {
             let factor = if face.kinds[i] == Coordinate::Logarithm { x[i] } else { 1.0 };
             match run.gradient(i) {
                 Some(gradient) => row.iter_mut().zip(gradient).for_each(|(out, slope)| *out = factor * slope),
@@ -218,7 +218,7 @@ impl Flow for Field<'_> {
         let face = self.face;
         let run = self.gradients.get_or_insert_with(|| face.tape.start_gradient(&face.values));
         let domain = run.at(&self.x);
-        for (i, row) in out.chunks_exact_mut(n).enumerate() {
+        for (i, row) in out.chunks_exact_mut(n.max(1)).enumerate() {
             match run.gradient(i) {
                 Some(gradient) => row.copy_from_slice(gradient),
                 None => row.fill(0.0),

@@ -13,8 +13,6 @@ use super::face::{Coordinate, Face};
 const STEP: f64 = 1e-5;
 /// A first step by so much of the fastest relative rate's time.
 const FIRST: f64 = 1e-2;
-/// Steps, or iterates, of one path.
-const MOST_STEPS: u32 = 2_000;
 /// How many steps between two looks whether a path has come to a known cycle.
 const LOOK_EVERY: u32 = 4;
 /// So close to a cycle, as a share of the way that each coordinate goes on it, squared, a path has come to it.
@@ -39,6 +37,8 @@ pub(super) enum Fate {
 pub(super) struct Ends<'e> {
     pub(super) basins: &'e [Basin],
     pub(super) rings: &'e [Ring],
+    /// Steps, or iterates, of one path.
+    pub(super) most: u32,
     pub(super) stop: &'e dyn Fn() -> bool,
 }
 
@@ -171,7 +171,7 @@ pub(super) fn flow(face: &Face, starts: &[Vec<f64>], ends: &Ends<'_>) -> Vec<Fat
                     flock.decide(lane, Fate::Ring(ring));
                 }
             }
-            if stepper.failed()[lane] || flock.taken[lane] >= MOST_STEPS {
+            if stepper.failed()[lane] || flock.taken[lane] >= ends.most {
                 flock.decide(lane, Fate::Open(y.clone()));
             }
         }
@@ -253,5 +253,5 @@ fn judged(face: &Face, ends: &Ends<'_>, x: &mut [f64], z: &mut [f64], taken: u32
     {
         return Some(Fate::Ring(ring));
     }
-    (taken >= MOST_STEPS).then(|| Fate::Open(x.to_vec()))
+    (taken >= ends.most).then(|| Fate::Open(x.to_vec()))
 }

@@ -42,7 +42,7 @@ struct Orbit<'f> {
 }
 
 enum End {
-    Emptied { coordinate: usize },
+    Emptied { coordinates: Vec<usize> },
     Equilibrium(usize),
     Repeats { length: usize, dying: Vec<usize> },
     Open,
@@ -55,17 +55,24 @@ pub(super) fn settle(subject: &mut Subject<'_>, known: Known<'_>, start: &[f64],
     let mut ending = Ending::open(start);
     let (mut state, mut clock, mut lost) = (start.to_vec(), 0.0, Vec::new());
     let mut left = MOST_ITERATES.min(MOST_KEPT / state.len().max(1));
+    // Each orbit but the last loses a species.
     while let Some(face) = Face::new(subject, &present) {
+        if face.len() == 0 {
+            ending.destination = known.nobody();
+            ending.time = Some(clock);
+            break;
+        }
         let mut orbit = Orbit { face: &face, field: face.field(), states: face.coordinates(&state) };
         let end = orbit.follow(known, &mut left);
         ending.see(&orbit);
         let iterates = orbit.len() - 1;
-        if let End::Emptied { coordinate } = end {
+        if let End::Emptied { coordinates } = &end {
             clock += step * iterates as f64;
             state = face.state(orbit.state(iterates));
-            let species = face.present[coordinate];
-            (state[species], ending.lowest[species], present[species]) = (0.0, 0.0, false);
-            lost.push(SpeciesId(species));
+            for species in coordinates.iter().map(|&coordinate| face.present[coordinate]) {
+                present[species] = false;
+                lost.push(SpeciesId(species));
+            }
             continue;
         }
         orbit.conclude(end, known, &mut ending, step, clock);
@@ -109,7 +116,7 @@ impl Orbit<'_> {
                 return End::Equilibrium(index);
             }
             let look = self.len().is_multiple_of(LOOK_EVERY);
-            if *left == 0 || n == 0 || (look && (known.stop)()) {
+            if *left == 0 || (look && (known.stop)()) {
                 return End::Open;
             }
             *left -= 1;
@@ -119,14 +126,14 @@ impl Orbit<'_> {
             if !self.field.at(&x, &mut next) {
                 return End::Open;
             }
-            let emptied = (0..n).find(|&i| next[i] < 0.0);
+            let emptied: Vec<usize> = (0..n).filter(|&i| next[i] < 0.0).collect();
             for x in &mut next {
                 *x = x.max(0.0);
             }
             self.states.extend_from_slice(&next);
             x.copy_from_slice(&next);
-            if let Some(coordinate) = emptied {
-                return End::Emptied { coordinate };
+            if !emptied.is_empty() {
+                return End::Emptied { coordinates: emptied };
             }
             highest.iter_mut().zip(&x).for_each(|(high, x)| *high = high.max(*x));
             if x.iter().zip(&self.face.scale).any(|(x, scale)| *x > BLOWN_UP * scale) {

@@ -18,6 +18,9 @@ const STARTS_OF_MANY: usize = 64;
 const STARTS_IF_STIFF: usize = 32;
 /// More species than this are many.
 const MANY: usize = 6;
+/// Steps, or iterates, of one path in the batch; of one that has lost a species, to see who else is lost.
+const MOST_STEPS: u32 = 2_000;
+const STEPS_AFTER_LOSS: u32 = 100;
 /// Paths that the batch leaves open and that are followed one by one, to find what cycle they are on.
 const FOLLOWED: usize = 4;
 /// So close to a cycle, as a share of its extent, squared, a path that was left open counts as being on it.
@@ -27,7 +30,7 @@ const BESIDE_CYCLE: f64 = 0.01;
 ///
 /// The shares are of starts spread over the survey's 95 % region, see `cloud`. A start counts for an equilibrium once it is
 /// in a region from which no path was seen to leave, for a cycle once it has come close to one that some path was seen to
-/// settle on. Numerical; the number of steps is bounded, and `stop` is asked now and then.
+/// settle on. Once a species is lost, who else is lost is looked for over a hundred steps. Numerical; the number of steps is bounded, and `stop` is asked now and then.
 pub fn from_now(
     subject: &mut Subject<'_>,
     list: &[Equilibrium],
@@ -46,7 +49,7 @@ pub fn from_now(
     let mut tally = Tally::new(known, &ending);
     if ending.stiff {
         for start in &starts {
-            tally.follow(subject, start, &[]);
+            tally.follow(subject, start);
         }
     } else if !starts.is_empty() {
         let rows = subject.graph.with_zeros(&subject.plan.rows, &subject.plan.values);
@@ -108,10 +111,10 @@ impl<'k> Tally<'k> {
     }
 
     /// Follows one path to its end.
-    fn follow(&mut self, subject: &mut Subject<'_>, start: &[f64], lost: &[SpeciesId]) {
+    fn follow(&mut self, subject: &mut Subject<'_>, start: &[f64]) {
         let ending = go(subject, self.known, start);
         self.learn(&ending);
-        self.count(ending.destination, lost);
+        self.count(ending.destination, &[]);
     }
 
     /// Follows many paths at once that start on one face; those that lose a species go on together without it.
@@ -119,9 +122,13 @@ impl<'k> Tally<'k> {
         let Some(face) = Face::new(subject, present) else {
             return starts.iter().for_each(|_| self.count(Destination::NotSettled, lost));
         };
+        if face.len() == 0 {
+            return starts.iter().for_each(|_| self.count(self.known.nobody(), lost));
+        }
+        let most = if lost.is_empty() { MOST_STEPS } else { STEPS_AFTER_LOSS };
         let motion = if subject.step().is_some() { Motion::Map } else { Motion::Flow };
         let basins = basins(&face, self.known.list, motion);
-        let ends = Ends { basins: &basins, rings: &self.rings, stop: self.known.stop };
+        let ends = Ends { basins: &basins, rings: &self.rings, most, stop: self.known.stop };
         let fates = match motion {
             Motion::Flow => flock::flow(&face, starts, &ends),
             Motion::Map => flock::map(&face, starts, &ends),
@@ -136,7 +143,14 @@ impl<'k> Tally<'k> {
                 Fate::Open(y) => open.push((start, y)),
             }
         }
-        self.left_open(subject, &face, &open, lost);
+        if lost.is_empty() {
+            self.left_open(subject, &face, &open);
+        } else {
+            // Wherever the others go, these are losses.
+            for _ in &open {
+                self.count(Destination::NotSettled, lost);
+            }
+        }
         for (coordinate, states) in emptied.into_iter().enumerate().filter(|(_, states)| !states.is_empty()) {
             let species = face.present[coordinate];
             let mut without = present.to_vec();
@@ -149,23 +163,17 @@ impl<'k> Tally<'k> {
     }
 
     /// Follows a few of those left open to their ends; others that stand close to what is found there count with them.
-    fn left_open(
-        &mut self,
-        subject: &mut Subject<'_>,
-        face: &Face,
-        open: &[(&Vec<f64>, Vec<f64>)],
-        lost: &[SpeciesId],
-    ) {
+    fn left_open(&mut self, subject: &mut Subject<'_>, face: &Face, open: &[(&Vec<f64>, Vec<f64>)]) {
         let mut followed = 0;
         for (start, y) in open {
-            let ends = Ends { basins: &[], rings: &self.rings, stop: self.known.stop };
+            let ends = Ends { basins: &[], rings: &self.rings, most: 0, stop: self.known.stop };
             if !y.is_empty() && ends.ring(face, y, BESIDE_CYCLE).is_some() {
-                self.count_cycle(lost);
+                self.count_cycle(&[]);
             } else if followed < FOLLOWED && !(self.known.stop)() {
                 followed += 1;
-                self.follow(subject, start, lost);
+                self.follow(subject, start);
             } else {
-                self.count(Destination::NotSettled, lost);
+                self.count(Destination::NotSettled, &[]);
             }
         }
     }

@@ -47,6 +47,14 @@ pub(super) struct Known<'k> {
     pub(super) stop: &'k dyn Fn() -> bool,
 }
 
+impl Known<'_> {
+    /// Where a path stays from which everybody is gone.
+    pub(super) fn nobody(&self) -> Destination {
+        let empty = |e: &Equilibrium| (0..e.state.len()).all(|i| !e.has(i));
+        self.list.iter().position(empty).map_or(Destination::NotSettled, Destination::Equilibrium)
+    }
+}
+
 /// How a path ended.
 #[derive(Clone, Debug)]
 pub(super) struct Ending {
@@ -90,6 +98,11 @@ pub(super) fn settle(subject: &mut Subject<'_>, known: Known<'_>, start: &[f64])
     let mut steps = MOST_STEPS.min(MOST_STATES / state.len().max(1));
     // Each leg but the last loses a species.
     while let Some(face) = Face::new(subject, &present) {
+        if face.len() == 0 {
+            ending.destination = known.nobody();
+            ending.time = Some(clock);
+            break;
+        }
         let Some(leg) = leg(&face, known, &state, &mut steps) else { break };
         ending.note(&face, &leg);
         if let End::Emptied { coordinate } = leg.end {
@@ -201,6 +214,7 @@ impl Ending {
             time = self.time;
         }
         lost.sort_unstable();
+        lost.dedup();
         (self.destination, self.time, self.ring) = (Destination::Loss(lost), time, None);
     }
 
