@@ -6,8 +6,8 @@ use crate::expr::graph::NodeId;
 use crate::expr::tape::Tape;
 use crate::expr::tape::run::Run;
 
-/// Numbers that a batch of points may take, all species together: 1 MiB.
-const BATCH: usize = 1 << 17;
+/// Numbers that the inputs of a batch take, all species together: 64 KiB, which stay near the processor.
+const BATCH: usize = 1 << 13;
 
 /// How often a bracket of a sign change is halved until it is taken for a jump.
 const HALVINGS: usize = 30;
@@ -65,9 +65,7 @@ impl Flow {
         let mut lanes = tape.lanes_of_points(&self.values);
         let batch = (BATCH / self.slice.held.len() / columns.len()).clamp(1, rows.len().max(1));
         let mut inputs: Vec<Vec<f64>> = self.slice.held.iter().map(|&x| vec![x; batch * columns.len()]).collect();
-        for (place, abundance) in inputs[self.slice.x].iter_mut().enumerate() {
-            *abundance = columns[place % columns.len()];
-        }
+        inputs[self.slice.x].chunks_mut(columns.len()).for_each(|row| row.copy_from_slice(columns));
         for from in (0..rows.len()).step_by(batch) {
             let count = batch.min(rows.len() - from);
             let (start, size) = (from * columns.len(), count * columns.len());
@@ -98,7 +96,8 @@ impl Flow {
         let middles = |count: usize| (0..count).map(|k| k as f64).collect::<Vec<_>>();
         let halves = |count: usize| (0..2 * count - 1).map(|k| k as f64 / 2.0).collect::<Vec<_>>();
         let mut cells = vec![false; frame.columns * frame.rows];
-        let mut test = SignChange { flow: self, run: self.per_head[axis].start(&self.values), frame };
+        let run = self.per_head[axis].start(&self.values);
+        let mut test = SignChange { flow: self, state: self.slice.held.clone(), run, frame };
         test.mark(&mut cells, axis, &halves(frame.columns), &middles(frame.rows), Along::Row);
         test.mark(&mut cells, axis, &middles(frame.columns), &halves(frame.rows), Along::Column);
         cells
@@ -143,6 +142,7 @@ enum Along {
 
 struct SignChange<'f> {
     flow: &'f Flow,
+    state: Vec<f64>,
     run: Run<'f, f64>,
     frame: &'f Frame,
 }
@@ -152,22 +152,23 @@ impl SignChange<'_> {
         let at = |places: &[f64], of: &dyn Fn(f64) -> f64| places.iter().map(|&k| of(k)).collect::<Vec<f64>>();
         let (xs, ys) = (at(columns, &|k| self.frame.x(k)), at(rows, &|k| self.frame.y(k)));
         let [growth, _] = self.flow.over(&self.flow.per_head[axis], &xs, &ys);
-        let step = if along == Along::Row { 1 } else { columns.len() };
-        for (place, &a) in growth.iter().enumerate() {
-            let (column, row) = (place % columns.len(), place / columns.len());
-            let is_last = if along == Along::Row { column + 1 == columns.len() } else { row + 1 == rows.len() };
-            let Some(&b) = growth.get(place + step).filter(|_| !is_last) else { continue };
-            if !((a < 0.0 && b >= 0.0) || (a >= 0.0 && b < 0.0)) {
-                continue;
-            }
-            let (first, half) = ([xs[column], ys[row]], place + step);
-            let second = [xs[half % columns.len()], ys[half / columns.len()]];
-            // The first half of a step starts in the middle of a cell, the second ends in the middle of the next.
-            let cell = match along {
-                Along::Row => [column.div_ceil(2), row],
-                Along::Column => [column, row.div_ceil(2)],
+        for (row, here) in growth.chunks(columns.len()).enumerate() {
+            // Along a row each value is followed by the next, along a column by the one above.
+            let next = match along {
+                Along::Row => &here[1..],
+                Along::Column => &growth[(row + 1) * columns.len()..],
             };
-            cells[cell[1] * self.frame.columns + cell[0]] |= self.is_zero([first, second], [a, b]);
+            for (column, (&a, &b)) in here.iter().zip(next).enumerate() {
+                if !((a < 0.0 && b >= 0.0) || (a >= 0.0 && b < 0.0)) {
+                    continue;
+                }
+                // The first half of a step starts in the middle of a cell, the second ends in the middle of the next.
+                let (to, cell) = match along {
+                    Along::Row => ([xs[column + 1], ys[row]], row * self.frame.columns + column.div_ceil(2)),
+                    Along::Column => ([xs[column], ys[row + 1]], row.div_ceil(2) * self.frame.columns + column),
+                };
+                cells[cell] |= self.is_zero([[xs[column], ys[row]], to], [a, b]);
+            }
         }
     }
 
@@ -175,14 +176,13 @@ impl SignChange<'_> {
     /// down to half of what it was.
     fn is_zero(&mut self, [mut from, mut to]: [[f64; 2]; 2], [mut a, mut b]: [f64; 2]) -> bool {
         let start = a.abs().max(b.abs());
-        let mut state = self.flow.slice.held.clone();
         for _ in 0..HALVINGS {
             if a.abs().max(b.abs()) <= start / 2.0 {
                 return true;
             }
             let middle = [from[0] + (to[0] - from[0]) / 2.0, from[1] + (to[1] - from[1]) / 2.0];
-            put(&self.flow.slice, &mut state, middle);
-            let domain = self.run.at(&state);
+            put(&self.flow.slice, &mut self.state, middle);
+            let domain = self.run.at(&self.state);
             let value = *self.run.output(0);
             if !domain.defined || !value.is_finite() {
                 return false;
