@@ -1,6 +1,6 @@
 //! What is measured, against numpy, scipy and mpmath: `tests/data/measures.json`, made by `measures.py` beside it.
 
-#![allow(clippy::unwrap_used, reason = "a test fails by panicking")]
+#![allow(clippy::panic, clippy::unwrap_used, reason = "a test fails by panicking")]
 
 mod common;
 

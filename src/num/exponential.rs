@@ -38,7 +38,8 @@ impl Flow {
         }
         let mut flow = Self { order: n, balanced: entries.to_vec(), scale: vec![1.0; n] };
         for _ in 0..MOST_SWEEPS {
-            if !(0..n).fold(false, |changed, i| flow.level(i) || changed) {
+            let changed = (0..n).filter(|&i| flow.level(i)).count();
+            if changed == 0 {
                 break;
             }
         }
@@ -100,7 +101,9 @@ impl Flow {
                 break;
             }
             term = product(&term, &step, n);
-            term.iter_mut().for_each(|x| *x /= k as f64);
+            for x in &mut term {
+                *x /= k as f64;
+            }
             sum.iter_mut().zip(&term).for_each(|(sum, x)| *sum += x);
         }
         sum

@@ -163,7 +163,9 @@ impl Leading {
         let right = column(&vectors.right);
         let mut left: Vec<Complex<f64>> = column(&vectors.left).iter().map(Complex::conj).collect();
         let overlap: Complex<f64> = left.iter().zip(&right).map(|(w, v)| w * v).sum();
-        left.iter_mut().for_each(|w| *w /= overlap);
+        for w in &mut left {
+            *w /= overlap;
+        }
         let bends = along(&right, |direction| bends(rows, at, direction))?;
         let bent = (0..n).map(|k| (0..n).map(|i| left[i] * bends[i * n + k]).sum()).collect();
         Some(Self { value, right, left, bent, discrete })

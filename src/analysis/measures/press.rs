@@ -5,6 +5,9 @@ use crate::num::dense::{inverse_unless, norm_one};
 use super::NetEffects;
 use super::setting::Setting;
 
+/// Condition times rounding beyond which not one digit of the inverse means anything.
+const FEWEST_DIGITS: f64 = 0.1;
+
 /// What is inverted, counted in units of the state: S⁻¹MS with M = −A, for a map I − A, S the state (1 for the absent).
 pub(super) struct Press {
     n: usize,
@@ -34,7 +37,9 @@ impl Press {
             matrix * inverse
         };
         // −0 has no meaning here.
-        inverse.iter_mut().for_each(|entry| *entry += 0.0);
+        for entry in &mut inverse {
+            *entry += 0.0;
+        }
         condition.is_finite().then_some(Self { n, scale, inverse, condition })
     }
 
@@ -51,6 +56,9 @@ impl Press {
     }
 
     fn effects(self) -> Option<NetEffects> {
+        if self.condition * f64::EPSILON > FEWEST_DIGITS {
+            return None;
+        }
         let n = self.n;
         let entry = |k: usize| self.inverse[k] * (self.scale[k / n] / self.scale[k % n]);
         let matrix: Vec<f64> = (0..n * n).map(entry).collect();
@@ -73,7 +81,7 @@ fn decoupled(matrix: &[f64], is_present: &[bool]) -> Vec<f64> {
 
 /// −A⁻¹, for a map (I − A)⁻¹ (Bender, Case & Gilpin 1984; Yodzis 1988), over all species.
 ///
-/// `None` where A (I − A) is singular.
+/// `None` where A (I − A) is singular, but for rounding.
 pub(super) fn net_effects(setting: &Setting<'_>, stop: &dyn Fn() -> bool) -> Option<NetEffects> {
     let all: Vec<usize> = (0..setting.n).collect();
     Press::new(setting, &all, stop)?.effects()
