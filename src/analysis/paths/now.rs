@@ -172,7 +172,9 @@ impl<'k> Tally<'k> {
         let ends = Ends { basins: &[], rings: &self.rings, most: 0, stop: self.known.stop };
         let on_cycle = |y: &[f64]| !y.is_empty() && ends.ring(face, y, BESIDE_CYCLE).is_some();
         let (cycling, rest): (Vec<_>, Vec<_>) = open.iter().partition(|(_, y)| on_cycle(y));
-        cycling.iter().for_each(|_| self.count_cycle(&[]));
+        for _ in cycling {
+            self.count_cycle(&[]);
+        }
         let followed = rest.len().min(FOLLOWED);
         for k in 0..followed {
             self.follow(subject, rest[k * rest.len() / followed].0, rest.len() as f64 / followed as f64);
