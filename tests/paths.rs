@@ -416,3 +416,17 @@ fn nobody_is_left() {
     let fade = "next: {N: 0.5*N, P: 0.5*P}\n";
     check(&format!("{head}{fade}{}", "now: {N: 16, P: 16}\n"), Destination::Equilibrium(0), 4.0);
 }
+
+/// Voles that mink from elsewhere eat up, in a box a thousand times what the bank holds. There is no equilibrium with
+/// voles, so no cycle around one (Poincaré & Bendixson): every start ends without them.
+#[test]
+fn a_box_far_larger_than_what_matters() {
+    let yaml = "title: bank\ntime: yr\nspecies:\n  V: {upper: 30000}\n  M: {upper: 4}\nchange:\n\
+                \x20 V: 1.5*V*(1 - V/30) - 4*V*M/(1 + 0.1*V)\n\
+                \x20 M: 0.004*V*M/(1 + 0.1*V) + 0.3*M*(1 - M/0.8) + 0.05 - 0.15*M\n\
+                now: {V: {value: 9, cv: 0.35}, M: {value: 0.45, cv: 0.3}}\n";
+    let (found, list) = now(&read(yaml));
+    assert!(list.len() == 1 && !list[0].has(0), "{list:?}");
+    assert_eq!(found.reaches, Destination::Equilibrium(0));
+    assert_eq!(found.shares, [(Destination::Equilibrium(0), 1.0)]);
+}

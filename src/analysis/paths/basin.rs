@@ -12,9 +12,9 @@ use crate::num::random::Source;
 use super::face::{Face, Field};
 
 /// Outer radii of the shells: the first, how each follows, and how many.
-const FIRST_SHELL: f64 = 1e-4;
+const FIRST_SHELL: f64 = 1e-5;
 const WIDER: f64 = 1.3;
-const SHELLS: usize = 44;
+const SHELLS: usize = 52;
 /// Points in each shell, for each coordinate.
 const POINTS: usize = 16;
 const MOST_POINTS: usize = 128;
@@ -36,7 +36,7 @@ pub(super) struct Basin {
     /// Index in the list.
     pub(super) equilibrium: usize,
     centre: Vec<f64>,
-    /// What deviations are measured by: the abundance, or the box where that is 0.
+    /// What deviations are measured by: the abundance, or where that is 0 at most the box.
     unit: Vec<f64>,
     p: Vec<f64>,
     inverse: Vec<f64>,
@@ -52,6 +52,21 @@ pub(super) fn basins(face: &Face, list: &[Equilibrium], motion: Motion) -> Vec<B
     candidates.filter_map(|(index, e)| Basin::new(face, &mut field, index, &e.state, motion)).collect()
 }
 
+/// Units in which no absent species moves another faster than anything moves by itself: a box may be far larger than what
+/// the others feel, and P would be as lopsided.
+fn balanced(slopes: &[f64], centre: &[f64], mut unit: Vec<f64>) -> Vec<f64> {
+    let n = unit.len();
+    let own = (0..n).map(|i| slopes[i * n + i].abs()).fold(0.0, f64::max);
+    for j in (0..n).filter(|&j| centre[j] == 0.0) {
+        let moves = |i: usize| slopes[i * n + j].abs() * unit[j] / unit[i];
+        let most = (0..n).filter(|&i| i != j && centre[i] > 0.0).map(moves).fold(0.0, f64::max);
+        if most > own && own > 0.0 {
+            unit[j] *= own / most;
+        }
+    }
+    unit
+}
+
 impl Basin {
     fn new(face: &Face, field: &mut Field<'_>, equilibrium: usize, state: &[f64], motion: Motion) -> Option<Self> {
         let n = face.len();
@@ -61,6 +76,7 @@ impl Basin {
         if !field.slopes_at(&centre, &mut slopes) {
             return None;
         }
+        let unit = balanced(&slopes, &centre, unit);
         (0..n * n).for_each(|k| slopes[k] *= unit[k % n] / unit[k / n]);
         let one: Vec<f64> = (0..n * n).map(|k| f64::from(u8::from(k / n == k % n))).collect();
         let p = match motion {

@@ -21,8 +21,8 @@ const MANY: usize = 6;
 /// Steps, or iterates, of one path in the batch; of one that has lost a species, to see who else is lost.
 const MOST_STEPS: u32 = 2_000;
 const STEPS_AFTER_LOSS: u32 = 100;
-/// Paths that the batch leaves open and that are followed one by one, to find what cycle they are on.
-const FOLLOWED: usize = 4;
+/// Of the paths that the batch leaves open, so many are followed one by one, and stand for the others.
+const FOLLOWED: usize = 12;
 /// So close to a cycle, as a share of its extent, squared, a path that was left open counts as being on it.
 const BESIDE_CYCLE: f64 = 0.01;
 
@@ -49,7 +49,7 @@ pub fn from_now(
     let mut tally = Tally::new(known, &ending);
     if ending.stiff {
         for start in &starts {
-            tally.follow(subject, start);
+            tally.follow(subject, start, 1.0);
         }
     } else if !starts.is_empty() {
         let rows = subject.graph.with_zeros(&subject.plan.rows, &subject.plan.values);
@@ -68,7 +68,7 @@ pub fn from_now(
 /// How many starts went where.
 struct Tally<'k> {
     known: Known<'k>,
-    counts: Vec<(Destination, usize)>,
+    counts: Vec<(Destination, f64)>,
     rings: Vec<Ring>,
     /// What all cycles are counted as.
     cycle: Option<Cycle>,
@@ -89,32 +89,36 @@ impl<'k> Tally<'k> {
         }
     }
 
-    fn add(&mut self, destination: Destination) {
+    fn add(&mut self, destination: Destination, weight: f64) {
         let destination = match (destination, &self.cycle) {
             (Destination::Cycle(_), Some(cycle)) => Destination::Cycle(cycle.clone()),
             (other, _) => other,
         };
         match self.counts.iter_mut().find(|(known, _)| *known == destination) {
-            Some((_, count)) => *count += 1,
-            None => self.counts.push((destination, 1)),
+            Some((_, count)) => *count += weight,
+            None => self.counts.push((destination, weight)),
         }
     }
 
     /// Counts a path for a destination, or for the loss of those that were lost before.
     fn count(&mut self, destination: Destination, lost: &[SpeciesId]) {
+        self.weigh(destination, lost, 1.0);
+    }
+
+    fn weigh(&mut self, destination: Destination, lost: &[SpeciesId], weight: f64) {
         let mut all = lost.to_vec();
         if let Destination::Loss(more) = &destination {
             all.extend_from_slice(more);
             all.sort_unstable();
         }
-        self.add(if all.is_empty() { destination } else { Destination::Loss(all) });
+        self.add(if all.is_empty() { destination } else { Destination::Loss(all) }, weight);
     }
 
     /// Follows one path to its end.
-    fn follow(&mut self, subject: &mut Subject<'_>, start: &[f64]) {
+    fn follow(&mut self, subject: &mut Subject<'_>, start: &[f64], weight: f64) {
         let ending = go(subject, self.known, start);
         self.learn(&ending);
-        self.count(ending.destination, &[]);
+        self.weigh(ending.destination, &[], weight);
     }
 
     /// Follows many paths at once that start on one face; those that lose a species go on together without it.
@@ -162,19 +166,18 @@ impl<'k> Tally<'k> {
         }
     }
 
-    /// Follows a few of those left open to their ends; others that stand close to what is found there count with them.
+    /// Follows some of those left open to their ends, evenly chosen, each for as many as it stands for; those that stand
+    /// close to a known cycle count for it at once.
     fn left_open(&mut self, subject: &mut Subject<'_>, face: &Face, open: &[(&Vec<f64>, Vec<f64>)]) {
-        let mut followed = 0;
-        for (start, y) in open {
-            let ends = Ends { basins: &[], rings: &self.rings, most: 0, stop: self.known.stop };
-            if !y.is_empty() && ends.ring(face, y, BESIDE_CYCLE).is_some() {
-                self.count_cycle(&[]);
-            } else if followed < FOLLOWED && !(self.known.stop)() {
-                followed += 1;
-                self.follow(subject, start);
-            } else {
-                self.count(Destination::NotSettled, &[]);
-            }
+        let ends = Ends { basins: &[], rings: &self.rings, most: 0, stop: self.known.stop };
+        let on_cycle = |y: &[f64]| !y.is_empty() && ends.ring(face, y, BESIDE_CYCLE).is_some();
+        let (cycling, rest): (Vec<_>, Vec<_>) = open.iter().partition(|(_, y)| on_cycle(y));
+        for _ in cycling {
+            self.count_cycle(&[]);
+        }
+        let followed = rest.len().min(FOLLOWED);
+        for k in 0..followed {
+            self.follow(subject, rest[k * rest.len() / followed].0, rest.len() as f64 / followed as f64);
         }
     }
 
@@ -185,7 +188,7 @@ impl<'k> Tally<'k> {
 
     /// By falling share.
     fn shares(mut self, starts: usize) -> Vec<(Destination, f64)> {
-        self.counts.sort_by_key(|(_, count)| std::cmp::Reverse(*count));
-        self.counts.into_iter().map(|(destination, count)| (destination, count as f64 / starts as f64)).collect()
+        self.counts.sort_by(|(_, a), (_, b)| b.total_cmp(a));
+        self.counts.into_iter().map(|(destination, count)| (destination, count / starts as f64)).collect()
     }
 }
