@@ -5,7 +5,7 @@
 mod common;
 
 use common::cases::{Case, all, named, number};
-use common::linear::{equilibrium, linearisation, measured};
+use common::measured::{equilibrium, linearisation, measured};
 use common::text::{ModelText, Read};
 use restpoint::analysis::measures::{Amplification, Measures, measure};
 use restpoint::analysis::subject::Subject;
