@@ -114,7 +114,7 @@ fn proofs_agree_with_the_table_of_routh_and_hurwitz() {
     for n in 2..=4 {
         let count = 7usize.pow(n as u32);
         for code in 0..count {
-            let a: Vec<i64> = (0..n).map(|k| (code / 7usize.pow(k as u32) % 7) as i64 - 1).collect();
+            let a: Vec<i64> = (0..n).map(|k| i64::from((code / 7usize.pow(k as u32) % 7) as u8) - 1).collect();
             let mut companion = vec![Interval::ZERO; n * n];
             for k in 0..n {
                 companion[k] = Interval::point(-(a[k] as f64));
