@@ -3,7 +3,7 @@
 use super::equilibria::Equilibria;
 use super::linearise::{Linearisation, Lineariser, Unavailable};
 use super::measures::{Measures, Meter};
-use super::paths::{Destination, FromNow, from_now, is_unstable_coexistence, settles};
+use super::paths::{Destination, FromNow, Paths, is_unstable_coexistence};
 use super::subject::Subject;
 
 /// What is said of one equilibrium.
@@ -39,12 +39,13 @@ pub fn assess(subject: &mut Subject<'_>, equilibria: &Equilibria, stop: &dyn Fn(
         .zip(&parts)
         .map(|(equilibrium, linear)| meter.measure(subject, equilibrium, *linear, stop))
         .collect();
+    let mut paths = Paths::new(subject, list, &parts, stop);
     let mut release = |which: usize| {
         let unstable = parts[which].is_some_and(|linear| is_unstable_coexistence(subject, &list[which], linear));
-        unstable.then(|| settles(subject, list, &parts, which, stop))
+        unstable.then(|| paths.settles(subject, which))
     };
     let settles: Vec<Option<Destination>> = (0..list.len()).map(&mut release).collect();
-    let from_now = from_now(subject, list, &parts, stop);
+    let from_now = paths.from_now(subject);
     let assessed = |((linear, measures), settles)| Assessed { linear, measures, settles };
     Assessment { equilibria: linear.into_iter().zip(measures).zip(settles).map(assessed).collect(), from_now }
 }

@@ -8,7 +8,7 @@ use std::hint::black_box;
 
 use common::{Contender, best, table};
 use nalgebra::{Complex, DMatrix};
-use restpoint::num::eigen::{eigenvalues, spectrum};
+use restpoint::num::eigen::{eigenvalues, spectrum, three, two};
 use restpoint::num::interval::Interval;
 use restpoint::num::random::Source;
 use restpoint::num::verified::half_plane;
@@ -28,6 +28,14 @@ fn sum(values: &[Complex<f64>]) -> f64 {
     values.iter().map(|z| z.re).sum()
 }
 
+fn in_place(entries: &[f64]) -> f64 {
+    match *entries {
+        [a, b, c, d] => sum(&two(&[a, b, c, d]).unwrap()),
+        [a, b, c, d, e, f, g, h, i] => sum(&three(&[a, b, c, d, e, f, g, h, i]).unwrap()),
+        _ => f64::NAN,
+    }
+}
+
 /// Nanoseconds a matrix.
 fn of_order(n: usize) {
     let matrices = random(n, if n <= 20 { 64 } else { 1 });
@@ -40,6 +48,9 @@ fn of_order(n: usize) {
         }),
         Contender::new("eigenvalues", count, || each(&|m| sum(&eigenvalues(m, n).unwrap()))),
     ];
+    if let 2 | 3 = n {
+        contenders.push(Contender::new("the same, no list made", count, || each(&|m| in_place(m))));
+    }
     if n <= 100 {
         contenders.push(Contender::new("with vectors", count, || each(&|m| sum(&spectrum(m, n).unwrap().values))));
         contenders.push(Contender::new("proof", count, || {
@@ -48,6 +59,6 @@ fn of_order(n: usize) {
     }
     let rounds = if n < 500 { 5 } else { 2 };
     let times = best(&mut contenders, rounds, 20);
-    let goals = [if n <= 3 { "" } else { "1" }, if n <= 3 { "0.1" } else { "1" }, "", ""];
+    let goals = if n <= 3 { ["", "", "0.1", "", ""] } else { ["", "1", "", "", ""] };
     table(&format!("order {n}"), &contenders, &times, &goals);
 }

@@ -30,18 +30,24 @@ pub(super) fn errors(numbers: &[f64], enclosure: &[Interval], spectrum: &Spectru
     let most = (n as f64 * (rounding * largest + uncertain)).sqrt() * largest.sqrt();
     let error = |k: usize| {
         let Some(vectors) = &spectrum.vectors else { return most };
-        let sum: f64 = (0..n * n)
-            .map(|p| {
-                let (i, j) = (p / n, p % n);
-                let entry = radius(p) + rounding * largest * scale[i] / scale[j];
-                vectors.left[i * n + k].norm() * entry * vectors.right[j * n + k].norm()
-            })
-            .sum();
-        let bound = vectors.condition[k] * sum;
+        let size = |of: &[Complex<f64>], i: usize| modulus(of[i * n + k]);
+        // Rounding is of rank one, so its part of the double sum is a product of two.
+        let left: f64 = (0..n).map(|i| size(&vectors.left, i) * scale[i]).sum();
+        let right: f64 = (0..n).map(|j| size(&vectors.right, j) / scale[j]).sum();
+        let through = |i: usize| -> f64 { (0..n).map(|j| radius(i * n + j) * size(&vectors.right, j)).sum() };
+        let spread: f64 =
+            if enclosure.is_empty() { 0.0 } else { (0..n).map(|i| size(&vectors.left, i) * through(i)).sum() };
+        let bound = vectors.condition[k] * (spread + rounding * largest * (left * right));
         // An infinite condition may have met a sum of 0.
         if bound.is_nan() { most } else { bound.min(most) }
     };
     (0..n).map(error).collect()
+}
+
+/// |z|, the slow way only where squares may be too small.
+fn modulus(z: Complex<f64>) -> f64 {
+    let square = z.norm_sqr();
+    if square > 1e-280 { square.sqrt() } else { z.norm() }
 }
 
 /// Sizes of the species by which rows and columns come to like norms (Parlett & Reinsch 1969), powers of two.

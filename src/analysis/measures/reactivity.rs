@@ -32,7 +32,7 @@ fn of(entries: &[f64], n: usize, step: Option<f64>) -> Option<f64> {
         return None;
     }
     let rate = match step {
-        None => *eigen::symmetric(entries, n).ok()?.first()?,
+        None => eigen::largest_symmetric(entries, n).ok()?,
         Some(step) => eigen::largest_singular(entries, n).ok()?.ln() / step,
     };
     rate.is_finite().then_some(rate)

@@ -1,25 +1,15 @@
 //! Regions from which paths can only go to one stable equilibrium, as far as numbers tell.
 //!
 //! With z the relative deviation from the equilibrium and V = zᵀPz a Lyapunov function of its linear part, a region V ≤ c
-//! is taken in which V was seen to fall at points in shells of every size up to c. A sample, not a proof.
+//! is taken in which V was seen to fall at points in shells of every size up to c ([`super::shells`]). A sample, not a proof.
 
 use crate::analysis::equilibria::Equilibrium;
 use crate::num::dense::inverse;
 use crate::num::lyapunov::{lyapunov, stein};
 use crate::num::quadratic;
-use crate::num::random::Source;
 
 use super::face::{Face, Field};
-
-/// Outer radii of the shells: the first, how each follows, and how many.
-const FIRST_SHELL: f64 = 1e-5;
-const WIDER: f64 = 1.3;
-const SHELLS: usize = 52;
-/// Points in each shell, for each coordinate.
-const POINTS: usize = 16;
-const MOST_POINTS: usize = 128;
-/// The region ends so far inside the last good shell, since shells are only sampled.
-const MARGIN: f64 = 0.8;
+use super::shells::Shells;
 
 /// What a face's equations are: a flow or a map.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -35,10 +25,10 @@ pub(super) enum Motion {
 pub(super) struct Basin {
     /// Index in the list.
     pub(super) equilibrium: usize,
-    centre: Vec<f64>,
+    pub(super) centre: Vec<f64>,
     /// What deviations are measured by: the abundance, or where that is 0 at most the box.
-    unit: Vec<f64>,
-    p: Vec<f64>,
+    pub(super) unit: Vec<f64>,
+    pub(super) p: Vec<f64>,
     inverse: Vec<f64>,
     /// V at the region's border.
     level: f64,
@@ -93,7 +83,7 @@ impl Basin {
         // Positive definite only where the equilibrium is stable (Lyapunov 1892).
         let root = quadratic::root(&p, n)?;
         let mut basin = Self { equilibrium, centre, unit, inverse: inverse(&p, n)?, p, level: 0.0 };
-        basin.level = basin.widest(field, &inverse(&root, n)?, motion)?;
+        basin.level = Shells::new(&basin, face, &inverse(&root, n)?, motion).widest()?;
         Some(basin)
     }
 
@@ -121,56 +111,5 @@ impl Basin {
             room * room / self.inverse[i * n + i]
         };
         (0..n).map(room).fold(self.level, f64::min)
-    }
-
-    /// The level of the last shell before one in which V does not fall everywhere.
-    fn widest(&self, field: &mut Field<'_>, root: &[f64], motion: Motion) -> Option<f64> {
-        let n = self.centre.len();
-        let mut source = Source::new(1);
-        let (mut radius, mut good) = (FIRST_SHELL, None);
-        for _ in 0..SHELLS {
-            for _ in 0..(POINTS * n).min(MOST_POINTS) {
-                let direction: Vec<f64> = (0..n).map(|_| source.between(-1.0, 1.0)).collect();
-                // Anywhere in the shell: where one side of it is not allowed, the other alone would say nothing.
-                let within = radius * source.between(1.0 / WIDER, 1.0);
-                if self.point(&direction, root, within).is_some_and(|x| !self.falls(field, &x, motion)) {
-                    return good;
-                }
-            }
-            good = Some((MARGIN * radius).powi(2));
-            radius *= WIDER;
-        }
-        good
-    }
-
-    /// The abundances in a direction on the shell V = radius²; `None` where one would be negative.
-    fn point(&self, direction: &[f64], root: &[f64], radius: f64) -> Option<Vec<f64>> {
-        let n = self.centre.len();
-        let length = direction.iter().map(|u| u * u).sum::<f64>().sqrt();
-        // P = L Lᵀ, so z = L⁻ᵀ u has V = |u|².
-        let mut z: Vec<f64> =
-            (0..n).map(|i| (0..n).map(|k| root[k * n + i] * direction[k]).sum::<f64>() / length).collect();
-        for (z, centre) in z.iter_mut().zip(&self.centre) {
-            *z = if *centre > 0.0 { *z } else { z.abs() };
-        }
-        let stretch = radius / quadratic::value(&self.p, &z).sqrt();
-        let x: Vec<f64> = (0..n).map(|i| self.centre[i] + self.unit[i] * stretch * z[i]).collect();
-        x.iter().all(|x| x.is_finite() && *x >= 0.0).then_some(x)
-    }
-
-    fn falls(&self, field: &mut Field<'_>, x: &[f64], motion: Motion) -> bool {
-        let n = x.len();
-        let (mut next, mut z) = (vec![0.0; n], vec![0.0; n]);
-        if !field.at(x, &mut next) {
-            return false;
-        }
-        let here = self.value(x, &mut z);
-        match motion {
-            Motion::Map => self.value(&next, &mut z) < here,
-            Motion::Flow => {
-                let pull = |i: usize| next[i] / self.unit[i] * (0..n).map(|j| self.p[i * n + j] * z[j]).sum::<f64>();
-                (0..n).map(pull).sum::<f64>() < 0.0
-            }
-        }
     }
 }

@@ -6,7 +6,7 @@ use crate::analysis::subject::Subject;
 use crate::model::{Aim, Role};
 
 use super::settle::{Ending, Known};
-use super::{Destination, go};
+use super::{Destination, Paths};
 
 /// How far beside: this share of the abundance that is moved most.
 const RELEASE: f64 = 1e-3;
@@ -20,12 +20,7 @@ pub fn is_unstable_coexistence(subject: &Subject<'_>, equilibrium: &Equilibrium,
     linear.stable == Some(false) && (0..subject.species()).filter(kept).all(|i| equilibrium.has(i))
 }
 
-/// What paths go to that start beside the equilibrium `which` of the list, along its leading eigenvector.
-///
-/// They start off by a thousandth of the abundance that the eigenvector moves most, to either side; for a complex pair,
-/// around which paths wind, one side serves for both. Where the two sides differ, the one counts that keeps fewer
-/// species: first a loss, then an equilibrium with fewer, then a path that does not settle, then a cycle. Numerical; the
-/// number of steps is bounded, and `stop` is asked now and then.
+/// As [`Paths::settles`], for one equilibrium of a scenario.
 pub fn settles(
     subject: &mut Subject<'_>,
     list: &[Equilibrium],
@@ -33,19 +28,34 @@ pub fn settles(
     which: usize,
     stop: &dyn Fn() -> bool,
 ) -> Destination {
-    let known = Known { list, linear, stop };
-    let state = &list[which].state;
-    let (direction, winds) = leading(state, linear.get(which).copied().flatten());
-    let mut follow = |sign: f64| -> Ending {
-        let start: Vec<f64> = state.iter().zip(&direction).map(|(x, v)| (x + sign * v).max(0.0)).collect();
-        go(subject, known, &start)
-    };
-    let first = follow(1.0).destination;
-    if winds {
-        return first;
+    Paths::new(subject, list, linear, stop).settles(subject, which)
+}
+
+impl Paths<'_> {
+    /// What paths go to that start beside the equilibrium `which` of the list, along its leading eigenvector.
+    ///
+    /// They start off by a thousandth of the abundance that the eigenvector moves most, to either side; for a complex pair,
+    /// around which paths wind, one side serves for both. Where the two sides differ, the one counts that keeps fewer
+    /// species: first a loss, then an equilibrium with fewer, then a path that does not settle, then a cycle. Numerical; the
+    /// number of steps is bounded, and `stop` is asked now and then.
+    ///
+    /// # Panics
+    /// If the list has no such equilibrium.
+    pub fn settles(&mut self, subject: &mut Subject<'_>, which: usize) -> Destination {
+        let Known { list, linear, .. } = self.grounds.known;
+        let state = &list[which].state;
+        let (direction, winds) = leading(state, linear.get(which).copied().flatten());
+        let mut follow = |sign: f64| -> Ending {
+            let start: Vec<f64> = state.iter().zip(&direction).map(|(x, v)| (x + sign * v).max(0.0)).collect();
+            self.go(subject, &start)
+        };
+        let first = follow(1.0).destination;
+        if winds {
+            return first;
+        }
+        let second = follow(-1.0).destination;
+        if rank(&second, list) < rank(&first, list) { second } else { first }
     }
-    let second = follow(-1.0).destination;
-    if rank(&second, list) < rank(&first, list) { second } else { first }
 }
 
 /// How much is lost: the lower, the more.

@@ -101,7 +101,7 @@ pub(super) struct LaneField<'f> {
     face: &'f Face,
     lanes: Lanes,
     /// The abundances of the latest evaluation.
-    x: Vec<Batch>,
+    pub(super) x: Vec<Batch>,
 }
 
 impl<'f> LaneField<'f> {
@@ -109,7 +109,8 @@ impl<'f> LaneField<'f> {
         Self { face, lanes: face.tape.lanes_of_points(&face.values), x: vec![[0.0; WIDTH]; face.len()] }
     }
 
-    fn evaluate(&mut self, out: &mut [Batch]) {
+    /// The tape's outputs at the abundances `x`; not a number in lanes in which they are not defined.
+    pub(super) fn evaluate(&mut self, out: &mut [Batch]) {
         let inputs: Vec<&[f64]> = self.x.iter().map(|x| &x[..]).collect();
         let mut outputs: Vec<&mut [f64]> = out.iter_mut().map(|out| &mut out[..]).collect();
         if !self.lanes.run(&inputs, &mut outputs) {

@@ -5,7 +5,7 @@ use crate::model::SpeciesId;
 use crate::num::ode::Stopped;
 
 use super::face::Face;
-use super::settle::present;
+use super::grounds::present;
 use super::walk::{Event, Walk};
 
 /// Relative error of a step.
@@ -50,7 +50,7 @@ pub struct Path {
 pub fn follow(subject: &mut Subject<'_>, start: &[f64], until: f64, stop: &dyn Fn() -> bool) -> Path {
     let mut path = Path { times: vec![0.0], states: vec![start.to_vec()], lost: Vec::new(), ended: Ended::InTime };
     let rows = subject.graph.with_zeros(&subject.plan.rows, &subject.plan.values);
-    let mut there = present(&mut subject.graph, &rows, start);
+    let mut there = present(subject, &rows, start);
     // Each leg but the last loses a species.
     while let Some(face) = Face::new(subject, &there) {
         let lost = match subject.step() {

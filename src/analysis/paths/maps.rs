@@ -5,10 +5,11 @@ use crate::analysis::subject::Subject;
 use crate::model::SpeciesId;
 use crate::num::elementary;
 
-use super::basin::{Basin, Motion, basins};
+use super::basin::Basin;
 use super::cycle::Ring;
 use super::face::{Face, Field};
-use super::settle::{Ending, Known, NEAR, present};
+use super::grounds::Grounds;
+use super::settle::{Ending, Known, NEAR};
 use super::{Cycle, Destination};
 
 /// Iterates of one path, over all faces.
@@ -49,21 +50,22 @@ enum End {
 }
 
 /// Follows the map from a state of all species; one application takes `step` time units.
-pub(super) fn settle(subject: &mut Subject<'_>, known: Known<'_>, start: &[f64], step: f64) -> Ending {
-    let rows = subject.graph.with_zeros(&subject.plan.rows, &subject.plan.values);
-    let mut present = present(&mut subject.graph, &rows, start);
+pub(super) fn settle(subject: &mut Subject<'_>, grounds: &mut Grounds<'_>, start: &[f64], step: f64) -> Ending {
+    let known = grounds.known;
+    let mut present = grounds.present(subject, start);
     let mut ending = Ending::open(start);
     let (mut state, mut clock, mut lost) = (start.to_vec(), 0.0, Vec::new());
     let mut left = MOST_ITERATES.min(MOST_KEPT / state.len().max(1));
     // Each orbit but the last loses a species.
-    while let Some(face) = Face::new(subject, &present) {
+    while let Some(ground) = grounds.on(subject, &present) {
+        let face = &ground.face;
         if face.len() == 0 {
             ending.destination = known.nobody();
             ending.time = Some(clock);
             break;
         }
-        let mut orbit = Orbit { face: &face, field: face.field(), states: face.coordinates(&state) };
-        let end = orbit.follow(known, &mut left);
+        let mut orbit = Orbit { face, field: face.field(), states: face.coordinates(&state) };
+        let end = orbit.follow(&ground.basins, known, &mut left);
         ending.see(&orbit);
         let iterates = orbit.len() - 1;
         if let End::Emptied { coordinates } = &end {
@@ -105,14 +107,13 @@ impl Orbit<'_> {
         &self.states[k * self.n()..(k + 1) * self.n()]
     }
 
-    fn follow(&mut self, known: Known<'_>, left: &mut usize) -> End {
+    fn follow(&mut self, basins: &[Basin], known: Known<'_>, left: &mut usize) -> End {
         let n = self.n();
-        let basins = basins(self.face, known.list, Motion::Map);
         let levels: Vec<f64> = basins.iter().map(|basin| basin.level_within(NEAR, &self.states)).collect();
         let (mut x, mut next, mut z) = (self.states.clone(), vec![0.0; n], vec![0.0; n]);
         let mut highest = x.clone();
         loop {
-            if let Some(index) = within(&basins, &levels, &x, &mut z) {
+            if let Some(index) = within(basins, &levels, &x, &mut z) {
                 return End::Equilibrium(index);
             }
             let look = self.len().is_multiple_of(LOOK_EVERY);

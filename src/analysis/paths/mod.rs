@@ -1,6 +1,6 @@
 //! Where paths go: what an unstable state gives way to, and where today's stocks lead. Numerical results, never proofs.
 //!
-//! [`settles`] and [`from_now`] are the ways in, [`follow`] records a path for drawing. `face` has the equations in the
+//! [`Paths`] is the way in, and for single questions [`settles`] and [`from_now`]; [`follow`] records a path for drawing. `face` has the equations in the
 //! coordinates in which they are followed, `walk` takes steps until someone is lost, `trail` keeps them; `settle` and
 //! `maps` go on until it is clear where a path ends: in a `basin`, or on a turn that `returns`, which `cycle` measures.
 //! `cloud` draws starts from the survey, `flock` follows them all at once.
@@ -12,15 +12,20 @@ mod cycle;
 mod face;
 mod flock;
 mod follow;
+mod grounds;
 mod maps;
 mod now;
 mod returns;
 mod settle;
+mod shells;
 mod trail;
 mod walk;
 
+use crate::analysis::equilibria::Equilibrium;
+use crate::analysis::linearise::Linearisation;
 use crate::analysis::subject::Subject;
 use crate::model::SpeciesId;
+use grounds::Grounds;
 use settle::{Ending, Known};
 
 pub use beside::{is_unstable_coexistence, settles};
@@ -69,10 +74,28 @@ pub struct FromNow {
     pub starts: usize,
 }
 
-/// Follows the path from a state of all species to its end.
-fn go(subject: &mut Subject<'_>, known: Known<'_>, start: &[f64]) -> Ending {
-    match subject.step() {
-        None => settle::settle(subject, known, start),
-        Some(step) => maps::settle(subject, known, start, step),
+/// What paths of one scenario go to. Equations and regions are made when they are first needed, and kept.
+pub struct Paths<'k> {
+    grounds: Grounds<'k>,
+}
+
+impl<'k> Paths<'k> {
+    /// Of a scenario's equilibria and their linear parts, one an equilibrium. Paths are no longer followed once `stop` says
+    /// so.
+    pub fn new(
+        subject: &mut Subject<'_>,
+        list: &'k [Equilibrium],
+        linear: &'k [Option<&'k Linearisation>],
+        stop: &'k dyn Fn() -> bool,
+    ) -> Self {
+        Self { grounds: Grounds::new(subject, Known { list, linear, stop }) }
+    }
+
+    /// Follows the path from a state of all species to its end.
+    fn go(&mut self, subject: &mut Subject<'_>, start: &[f64]) -> Ending {
+        match subject.step() {
+            None => settle::settle(subject, &mut self.grounds, start),
+            Some(step) => maps::settle(subject, &mut self.grounds, start, step),
+        }
     }
 }

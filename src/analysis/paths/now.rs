@@ -5,12 +5,11 @@ use crate::analysis::linearise::Linearisation;
 use crate::analysis::subject::Subject;
 use crate::model::SpeciesId;
 
-use super::basin::{Motion, basins};
 use super::cycle::Ring;
 use super::face::Face;
 use super::flock::{self, Ends, Fate};
-use super::settle::{Ending, Known, present};
-use super::{Cycle, Destination, FromNow, cloud, go};
+use super::settle::Ending;
+use super::{Cycle, Destination, FromNow, Paths, cloud};
 
 /// Starts in the cloud: as many as speed allows, fewer where a step costs more.
 const STARTS: usize = 256;
@@ -26,57 +25,62 @@ const FOLLOWED: usize = 12;
 /// So close to a cycle, as a share of its extent, squared, a path that was left open counts as being on it.
 const BESIDE_CYCLE: f64 = 0.01;
 
-/// Where today's stocks lead; `None` unless the survey has a value for every species.
-///
-/// The shares are of starts spread over the survey's 95 % region, see `cloud`. A start counts for an equilibrium once it is
-/// in a region from which no path was seen to leave, for a cycle once it has come close to one that some path was seen to
-/// settle on. Once a species is lost, who else is lost is looked for over a hundred steps. Numerical; the number of steps is bounded, and `stop` is asked now and then.
+/// As [`Paths::from_now`], for a scenario of which nothing else is asked.
 pub fn from_now(
     subject: &mut Subject<'_>,
     list: &[Equilibrium],
     linear: &[Option<&Linearisation>],
     stop: &dyn Fn() -> bool,
 ) -> Option<FromNow> {
-    let known = Known { list, linear, stop };
-    let middle = cloud::middle(subject.model)?;
-    let ending = go(subject, known, &middle);
-    let count = match subject.species() {
-        _ if ending.stiff => STARTS_IF_STIFF,
-        n if n > MANY => STARTS_OF_MANY,
-        _ => STARTS,
-    };
-    let starts = cloud::starts(subject.model, &middle, count);
-    let mut tally = Tally::new(known, &ending);
-    if ending.stiff {
-        for start in &starts {
-            tally.follow(subject, start, 1.0);
+    Paths::new(subject, list, linear, stop).from_now(subject)
+}
+
+impl Paths<'_> {
+    /// Where today's stocks lead; `None` unless the survey has a value for every species.
+    ///
+    /// The shares are of starts spread over the survey's 95 % region, see `cloud`. A start counts for an equilibrium once it is
+    /// in a region from which no path was seen to leave, for a cycle once it has come close to one that some path was seen to
+    /// settle on. Once a species is lost, who else is lost is looked for over a hundred steps. Numerical; the number of steps is bounded, and `stop` is asked now and then.
+    pub fn from_now(&mut self, subject: &mut Subject<'_>) -> Option<FromNow> {
+        let middle = cloud::middle(subject.model)?;
+        let ending = self.go(subject, &middle);
+        let count = match subject.species() {
+            _ if ending.stiff => STARTS_IF_STIFF,
+            n if n > MANY => STARTS_OF_MANY,
+            _ => STARTS,
+        };
+        let starts = cloud::starts(subject.model, &middle, count);
+        let mut tally = Tally::new(self, &ending);
+        if ending.stiff {
+            for start in &starts {
+                tally.follow(subject, start, 1.0);
+            }
+        } else if !starts.is_empty() {
+            let there = tally.paths.grounds.present(subject, &middle);
+            tally.together(subject, &starts, &there, &[]);
         }
-    } else if !starts.is_empty() {
-        let rows = subject.graph.with_zeros(&subject.plan.rows, &subject.plan.values);
-        let there = present(&mut subject.graph, &rows, &middle);
-        tally.together(subject, &starts, &there, &[]);
+        Some(FromNow {
+            shares: tally.shares(starts.len()),
+            starts: starts.len(),
+            reaches: ending.destination,
+            time: ending.time,
+            lowest: ending.lowest,
+        })
     }
-    Some(FromNow {
-        shares: tally.shares(starts.len()),
-        starts: starts.len(),
-        reaches: ending.destination,
-        time: ending.time,
-        lowest: ending.lowest,
-    })
 }
 
 /// How many starts went where.
-struct Tally<'k> {
-    known: Known<'k>,
+struct Tally<'t, 'k> {
+    paths: &'t mut Paths<'k>,
     counts: Vec<(Destination, f64)>,
     rings: Vec<Ring>,
     /// What all cycles are counted as.
     cycle: Option<Cycle>,
 }
 
-impl<'k> Tally<'k> {
-    fn new(known: Known<'k>, first: &Ending) -> Self {
-        let mut tally = Self { known, counts: Vec::new(), rings: Vec::new(), cycle: None };
+impl<'t, 'k> Tally<'t, 'k> {
+    fn new(paths: &'t mut Paths<'k>, first: &Ending) -> Self {
+        let mut tally = Self { paths, counts: Vec::new(), rings: Vec::new(), cycle: None };
         tally.learn(first);
         tally
     }
@@ -116,26 +120,25 @@ impl<'k> Tally<'k> {
 
     /// Follows one path to its end.
     fn follow(&mut self, subject: &mut Subject<'_>, start: &[f64], weight: f64) {
-        let ending = go(subject, self.known, start);
+        let ending = self.paths.go(subject, start);
         self.learn(&ending);
         self.weigh(ending.destination, &[], weight);
     }
 
     /// Follows many paths at once that start on one face; those that lose a species go on together without it.
     fn together(&mut self, subject: &mut Subject<'_>, starts: &[Vec<f64>], present: &[bool], lost: &[SpeciesId]) {
-        let Some(face) = Face::new(subject, present) else {
+        let Some(ground) = self.paths.grounds.on(subject, present) else {
             return starts.iter().for_each(|_| self.count(Destination::NotSettled, lost));
         };
+        let (face, known) = (&ground.face, self.paths.grounds.known);
         if face.len() == 0 {
-            return starts.iter().for_each(|_| self.count(self.known.nobody(), lost));
+            return starts.iter().for_each(|_| self.count(known.nobody(), lost));
         }
         let most = if lost.is_empty() { MOST_STEPS } else { STEPS_AFTER_LOSS };
-        let motion = if subject.step().is_some() { Motion::Map } else { Motion::Flow };
-        let basins = basins(&face, self.known.list, motion);
-        let ends = Ends { basins: &basins, rings: &self.rings, most, stop: self.known.stop };
-        let fates = match motion {
-            Motion::Flow => flock::flow(&face, starts, &ends),
-            Motion::Map => flock::map(&face, starts, &ends),
+        let ends = Ends { basins: &ground.basins, rings: &self.rings, most, stop: known.stop };
+        let fates = match subject.step() {
+            None => flock::flow(face, starts, &ends),
+            Some(_) => flock::map(face, starts, &ends),
         };
         let mut emptied: Vec<Vec<Vec<f64>>> = vec![Vec::new(); face.len()];
         let mut open = Vec::new();
@@ -148,7 +151,7 @@ impl<'k> Tally<'k> {
             }
         }
         if lost.is_empty() {
-            self.left_open(subject, &face, &open);
+            self.left_open(subject, face, &open);
         } else {
             // Wherever the others go, these are losses.
             for _ in &open {
@@ -169,7 +172,7 @@ impl<'k> Tally<'k> {
     /// Follows some of those left open to their ends, evenly chosen, each for as many as it stands for; those that stand
     /// close to a known cycle count for it at once.
     fn left_open(&mut self, subject: &mut Subject<'_>, face: &Face, open: &[(&Vec<f64>, Vec<f64>)]) {
-        let ends = Ends { basins: &[], rings: &self.rings, most: 0, stop: self.known.stop };
+        let ends = Ends { basins: &[], rings: &self.rings, most: 0, stop: self.paths.grounds.known.stop };
         let on_cycle = |y: &[f64]| !y.is_empty() && ends.ring(face, y, BESIDE_CYCLE).is_some();
         let (cycling, rest): (Vec<_>, Vec<_>) = open.iter().partition(|(_, y)| on_cycle(y));
         for _ in cycling {

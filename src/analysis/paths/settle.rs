@@ -7,13 +7,13 @@
 use crate::analysis::equilibria::Equilibrium;
 use crate::analysis::linearise::Linearisation;
 use crate::analysis::subject::Subject;
-use crate::expr::graph::Graph;
 use crate::model::SpeciesId;
 
 use super::Destination;
-use super::basin::{Basin, Motion, basins};
+use super::basin::Basin;
 use super::cycle::{self, Ring};
 use super::face::{Coordinate, Face};
+use super::grounds::{Ground, Grounds};
 use super::returns::{Closed, Precision, Returns};
 use super::walk::{Event, Walk};
 
@@ -84,27 +84,23 @@ struct Leg<'f> {
     end: End,
 }
 
-/// The species that are there, or that will come: one that is 0 and whose rate vanishes with it is not.
-pub(super) fn present(graph: &mut Graph, rows: &[crate::expr::graph::NodeId], state: &[f64]) -> Vec<bool> {
-    state.iter().enumerate().map(|(i, &x)| x > 0.0 || !graph.vanishes_at_zero(rows[i], i)).collect()
-}
-
 /// Follows the path from a state of all species.
-pub(super) fn settle(subject: &mut Subject<'_>, known: Known<'_>, start: &[f64]) -> Ending {
-    let rows = subject.graph.with_zeros(&subject.plan.rows, &subject.plan.values);
-    let mut present = present(&mut subject.graph, &rows, start);
+pub(super) fn settle(subject: &mut Subject<'_>, grounds: &mut Grounds<'_>, start: &[f64]) -> Ending {
+    let known = grounds.known;
+    let mut present = grounds.present(subject, start);
     let mut ending = Ending::open(start);
     let (mut state, mut clock, mut lost) = (start.to_vec(), 0.0, Vec::new());
     let mut steps = MOST_STEPS.min(MOST_STATES / state.len().max(1));
     // Each leg but the last loses a species.
-    while let Some(face) = Face::new(subject, &present) {
+    while let Some(ground) = grounds.on(subject, &present) {
+        let face = &ground.face;
         if face.len() == 0 {
             ending.destination = known.nobody();
             ending.time = Some(clock);
             break;
         }
-        let Some(leg) = leg(&face, known, &state, &mut steps) else { break };
-        ending.note(&face, &leg);
+        let Some(leg) = leg(&ground, known, &state, &mut steps) else { break };
+        ending.note(face, &leg);
         if let End::Emptied { coordinate } = leg.end {
             let last = leg.walk.trail.len() - 1;
             state = face.state(leg.walk.trail.state(last));
@@ -114,23 +110,21 @@ pub(super) fn settle(subject: &mut Subject<'_>, known: Known<'_>, start: &[f64])
             lost.push(SpeciesId(species));
             continue;
         }
-        ending.conclude(&face, known, leg, &state, clock);
+        ending.conclude(face, known, leg, &state, clock);
         break;
     }
     ending.with_lost(lost, clock);
     ending
 }
 
-fn leg<'f>(face: &'f Face, known: Known<'_>, state: &[f64], steps: &mut usize) -> Option<Leg<'f>> {
+fn leg<'f>(ground: &'f Ground, known: Known<'_>, state: &[f64], steps: &mut usize) -> Option<Leg<'f>> {
+    let face = &ground.face;
     let walk = Walk::new(face, state, COARSE_STEP, 1.0).ok()?;
     let returns = Returns::new(walk.stepper.state(), walk.stepper.rates());
     let mut leg = Leg { walk, returns, end: End::Open };
     let start: Vec<f64> = face.present.iter().map(|&i| state[i]).collect();
-    let basins: Vec<(Basin, f64)> = basins(face, known.list, Motion::Flow)
-        .into_iter()
-        .map(|basin| (basin.level_within(NEAR, &start), basin))
-        .map(|(level, basin)| (basin, level))
-        .collect();
+    let within = |basin: &'f Basin| (basin, basin.level_within(NEAR, &start));
+    let basins: Vec<(&Basin, f64)> = ground.basins.iter().map(within).collect();
     let (mut x, mut z) = (start, vec![0.0; face.len()]);
     let (mut precision, mut fastest) = (COARSE, 0.0f64);
     loop {

@@ -1,14 +1,15 @@
 //! Eigenvalues and eigenvectors of real matrices, every iteration bounded.
 //!
-//! [`eigenvalues`] and [`spectrum`] are the ways in, [`symmetric`] and [`largest_singular`] for growth at once, and
+//! [`eigenvalues`] and [`spectrum`] are the ways in, [`symmetric`], [`largest_symmetric`] and [`largest_singular`] for growth at once, and
 //! [`Discriminant`] for the border between node and spiral. A matrix is divided along its zeros (`blocks`), each block scaled
 //! and balanced by powers of two (`scale`), solved in closed form (`two`, `three`) or by an iteration (`general`), and put
-//! together again (`triangular`, `vectors`). All numerical: what is *proved* of a spectrum is said by
+//! together again (`triangular`, `vectors`; orders two and three in `small`). [`two`] and [`three`] allocate nothing. All numerical: what is *proved* of a spectrum is said by
 //! [`verified`](super::verified). The library's own calls for eigenvalues may run for ever; the lint settings forbid them.
 
 mod blocks;
 mod general;
 mod scale;
+mod small;
 mod symmetric;
 mod three;
 mod triangular;
@@ -18,7 +19,7 @@ mod vectors;
 use nalgebra::Complex;
 
 pub(crate) use blocks::strongly_connected;
-pub use symmetric::{SymmetricSpectrum, largest_singular, symmetric, symmetric_spectrum};
+pub use symmetric::{SymmetricSpectrum, largest_singular, largest_symmetric, symmetric, symmetric_spectrum};
 pub(crate) use triangular::complex_schur;
 pub use two::Discriminant;
 
@@ -106,8 +107,9 @@ pub fn eigenvalues(entries: &[f64], n: usize) -> Result<Vec<Complex<f64>>, Unsol
         return Err(Unsolved::NotFinite);
     }
     let mut values = match *entries {
-        [a] => vec![Complex::new(a, 0.0)],
-        [a, b, c, d] => two::values(&[a, b, c, d]).to_vec(),
+        [a] => return Ok(vec![Complex::new(a, 0.0)]),
+        [a, b, c, d] => return Ok(two(&[a, b, c, d])?.to_vec()),
+        [a, b, c, d, e, f, g, h, i] => return Ok(three(&[a, b, c, d, e, f, g, h, i])?.to_vec()),
         _ => by_blocks(entries, n)?,
     };
     if values.iter().any(|z| !z.is_finite()) {
@@ -117,12 +119,34 @@ pub fn eigenvalues(entries: &[f64], n: usize) -> Result<Vec<Complex<f64>>, Unsol
     Ok(values)
 }
 
+/// As [`eigenvalues`] of a matrix of order two, without an allocation.
+pub fn two(entries: &[f64; 4]) -> Result<[Complex<f64>; 2], Unsolved> {
+    all_finite(entries)?;
+    let values = two::values(entries);
+    if values.iter().all(|z| z.is_finite()) { Ok(values) } else { Err(Unsolved::NotFinite) }
+}
+
+/// As [`eigenvalues`] of a matrix of order three; without an allocation, unless two of them nearly meet.
+pub fn three(entries: &[f64; 9]) -> Result<[Complex<f64>; 3], Unsolved> {
+    all_finite(entries)?;
+    let mut values = match cut_off(entries) {
+        Some(i) => {
+            let (j, k) = ((i + 1) % 3, (i + 2) % 3);
+            let others = [entries[4 * j], entries[3 * j + k], entries[3 * k + j], entries[4 * k]];
+            let [first, second] = two::values(&others);
+            [Complex::new(entries[4 * i], 0.0), first, second]
+        }
+        None => of_three(entries)?,
+    };
+    values.sort_by(contract_order);
+    if values.iter().all(|z| z.is_finite()) { Ok(values) } else { Err(Unsolved::NotFinite) }
+}
+
+fn all_finite(entries: &[f64]) -> Result<(), Unsolved> {
+    if entries.iter().all(|x| x.is_finite()) { Ok(()) } else { Err(Unsolved::NotFinite) }
+}
+
 fn by_blocks(entries: &[f64], n: usize) -> Result<Vec<Complex<f64>>, Unsolved> {
-    if let Ok(block) = <&[f64; 9]>::try_from(entries)
-        && irreducible(block)
-    {
-        return of_three(block);
-    }
     let mut values = Vec::with_capacity(n);
     for part in strongly_connected(n, |i, j| entries[i * n + j] != 0.0) {
         let block: Vec<f64> = part.iter().flat_map(|&i| part.iter().map(move |&j| entries[i * n + j])).collect();
@@ -136,22 +160,34 @@ fn by_blocks(entries: &[f64], n: usize) -> Result<Vec<Complex<f64>>, Unsolved> {
     Ok(values)
 }
 
-/// A graph of three is strongly connected if every index has an arrow out and one in: with fewer, it or the other two are
-/// cut off.
-fn irreducible(a: &[f64; 9]) -> bool {
-    let linked = |i: usize, j: usize| a[i] != 0.0 || a[j] != 0.0;
-    linked(1, 2) && linked(3, 5) && linked(6, 7) && linked(3, 6) && linked(1, 7) && linked(2, 5)
+/// An index of three that has no arrow out or none in, so that its entry is an eigenvalue and the other two are alone. A
+/// graph of three without one is strongly connected.
+fn cut_off(a: &[f64; 9]) -> Option<usize> {
+    let apart = |i: usize, j: usize| a[i] == 0.0 && a[j] == 0.0;
+    let [first, second, third] = [apart(1, 2) || apart(3, 6), apart(3, 5) || apart(1, 7), apart(6, 7) || apart(2, 5)];
+    if first {
+        Some(0)
+    } else if second {
+        Some(1)
+    } else {
+        third.then_some(2)
+    }
 }
 
-fn of_three(entries: &[f64; 9]) -> Result<Vec<Complex<f64>>, Unsolved> {
+/// Of an irreducible one.
+fn of_three(entries: &[f64; 9]) -> Result<[Complex<f64>; 3], Unsolved> {
     let mut near = *entries;
     balance_into(&mut near, &mut [0; 3]);
     let exponent = exponent_of(largest(&near)).unwrap_or(0);
     let near = near.map(|x| times_power(x, -exponent));
-    match three::values(&near) {
-        Some(values) => Ok(values.map(|z| unscaled(z, exponent)).to_vec()),
-        None => Ok(general::values(&near, 3)?.into_iter().map(|z| unscaled(z, exponent)).collect()),
-    }
+    let values = match three::values(&near) {
+        Some(values) => values,
+        None => match general::values(&near, 3)?[..] {
+            [a, b, c] => [a, b, c],
+            _ => return Err(Unsolved::NoConvergence),
+        },
+    };
+    Ok(values.map(|z| unscaled(z, exponent)))
 }
 
 /// Of an irreducible block of order three or more.
@@ -176,6 +212,14 @@ pub fn spectrum(entries: &[f64], n: usize) -> Result<Spectrum, Unsolved> {
     assert_eq!(entries.len(), n * n, "entries of a matrix of order {n}");
     if entries.iter().any(|x| !x.is_finite()) {
         return Err(Unsolved::NotFinite);
+    }
+    let in_closed_form = match *entries {
+        [a, b, c, d] => small::of_two(&[a, b, c, d]),
+        [a, b, c, d, e, f, g, h, i] => small::of_three(&[a, b, c, d, e, f, g, h, i]),
+        _ => None,
+    };
+    if let Some(found) = in_closed_form {
+        return Ok(found);
     }
     let form = triangular::Triangular::new(entries, n)?;
     if form.values.iter().any(|z| !z.is_finite()) {

@@ -95,6 +95,38 @@ pub(super) fn balance_into(entries: &mut [f64], exponents: &mut [i32]) {
 
 /// The power of two by which column i is to be multiplied and row i divided; 0 where that gains nothing.
 fn step_of(entries: &[f64], n: usize, i: usize) -> i32 {
+    let others = || (0..n).filter(move |&j| j != i);
+    let column: f64 = others().map(|j| entries[j * n + i] * entries[j * n + i]).sum();
+    let row: f64 = others().map(|j| entries[i * n + j] * entries[i * n + j]).sum();
+    let diagonal = entries[i * n + i];
+    if SAFE.contains(&column) && SAFE.contains(&row) {
+        return step_of_squares(column, row, diagonal * diagonal);
+    }
+    step_far_away(entries, n, i)
+}
+
+/// Squares of lengths between which, times powers of four that bring two of them together, nothing overflows.
+const SAFE: std::ops::Range<f64> = 1e-120..1e120;
+
+fn step_of_squares(column: f64, row: f64, diagonal: f64) -> i32 {
+    if row < 4.0 * column && column < 4.0 * row {
+        return 0;
+    }
+    let (Some(c), Some(r)) = (exponent_of(column), exponent_of(row)) else { return 0 };
+    let mut best = (0, column + row);
+    let half = (r.div_euclid(2) - c.div_euclid(2)).div_euclid(2);
+    for step in [half, half + 1] {
+        let size = times_power(column, 2 * step) + times_power(row, -2 * step);
+        if size < best.1 {
+            best = (step, size);
+        }
+    }
+    let worth = best.1 + diagonal < WORTH_IT * WORTH_IT * (column + row + diagonal);
+    if worth { best.0 } else { 0 }
+}
+
+/// The same where squares may leave the range of f64.
+fn step_far_away(entries: &[f64], n: usize, i: usize) -> i32 {
     let column = length((0..n).filter(|&j| j != i).map(|j| entries[j * n + i]));
     let row = length((0..n).filter(|&j| j != i).map(|j| entries[i * n + j]));
     if row < 2.0 * column && column < 2.0 * row {

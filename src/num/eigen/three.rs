@@ -1,18 +1,26 @@
 //! Eigenvalues of an irreducible matrix of order three in nearly closed form, where that is as good as an iteration on the
 //! whole matrix; it says where it is not.
 //!
-//! The extreme real root of the characteristic cubic by Newton's iteration from beyond it, where the cubic is monotone and
-//! convex; the others from the quadratic that is left. Coefficients lose digits, so each root then takes Newton steps on
+//! The extreme real root of the characteristic cubic by Halley's iteration (1694) from beyond it, where the cubic is monotone
+//! and convex; the others from the quadratic that is left. Coefficients lose digits, so each root then takes Newton steps on
 //! det(A − λI) itself, whose value is known to within a few ulp of the permanent of |A − λI|. A root is kept if that error
 //! moves it by no more than some ulp of the matrix, which fails only where roots nearly meet.
 
+use std::ops::{Add, Mul, Neg, Sub};
+
 use nalgebra::Complex;
 
-/// Newton steps towards the extreme root; from a start at most four times too far away six to nine are usual.
+/// Steps towards the extreme root; from a start at most four times too far away three to five are usual.
 const MOST_STEPS: usize = 40;
 
-/// Steps of each root on the determinant: the second only confirms the first.
+/// A last step so short, relative to the root, leaves an error of its cube.
+const SHORT: f64 = 1e-5;
+
+/// Steps of each root on the determinant, at most: the second only confirms the first.
 const POLISHING: usize = 2;
+
+/// A step so short needs no confirmation, and one that is longer in the end has not settled.
+const CONFIRMED: f64 = 1e-12;
 
 /// A root may be off by this many ulp of the largest entry: what backward stability would allow at a condition of ten.
 const ULPS: f64 = 32.0;
@@ -37,6 +45,8 @@ pub(super) fn values(a: &[f64; 9]) -> Option<[Complex<f64>; 3]> {
 }
 
 /// The real eigenvalue farthest from `middle`, a third of the trace, to a few digits less than there are.
+///
+/// Where the cubic has but one real root a step may land a little on its other side, from where the next ones come back.
 fn extreme(a: &[f64; 9], middle: f64) -> Option<f64> {
     // y³ + p y + q for y = λ − middle.
     let (p, q) = (minors(a, middle), -determinant(a, middle));
@@ -44,9 +54,11 @@ fn extreme(a: &[f64; 9], middle: f64) -> Option<f64> {
     let cube = f64::from_bits(((q.abs().to_bits() >> 52) / 3 + 683) << 52);
     let mut y = -(2.0 * p.abs().sqrt().max(cube)).copysign(q);
     for _ in 0..MOST_STEPS {
-        let step = ((y * y + p) * y + q) / (3.0 * y * y + p);
+        let (value, slope) = ((y * y + p) * y + q, 3.0 * y * y + p);
+        // f f'/(f'² − f f''/2).
+        let step = value * slope / (slope * slope - 3.0 * y * value);
         y -= step;
-        if step.abs() <= 1e-9 * y.abs() {
+        if step.abs() <= SHORT * y.abs() {
             return Some(y + middle);
         }
     }
@@ -54,9 +66,34 @@ fn extreme(a: &[f64; 9], middle: f64) -> Option<f64> {
 }
 
 /// Sum of the principal minors of A − xI.
-fn minors(a: &[f64; 9], x: f64) -> f64 {
-    let [d, e, f] = [a[0] - x, a[4] - x, a[8] - x];
+pub(super) fn minors<T: Number>(a: &[f64; 9], x: T) -> T {
+    let [d, e, f] = [-x + a[0], -x + a[4], -x + a[8]];
     (d * e - a[1] * a[3]) + (d * f - a[2] * a[6]) + (e * f - a[5] * a[7])
+}
+
+/// Numbers that an eigenvalue may be.
+pub(super) trait Number:
+    Copy + Neg<Output = Self> + Add<Output = Self> + Add<f64, Output = Self> + Sub<f64, Output = Self> + Mul<Output = Self>
+{
+}
+
+impl Number for f64 {}
+impl Number for Complex<f64> {}
+
+/// adj(A − xI), row by row.
+pub(super) fn adjugate(a: &[f64; 9], x: Complex<f64>) -> [Complex<f64>; 9] {
+    let [d, e, f] = [a[0] - x, a[4] - x, a[8] - x];
+    [
+        e * f - a[5] * a[7],
+        -f * a[1] + a[2] * a[7],
+        -e * a[2] + a[1] * a[5],
+        -f * a[3] + a[5] * a[6],
+        d * f - a[2] * a[6],
+        -d * a[5] + a[2] * a[3],
+        -e * a[6] + a[3] * a[7],
+        -d * a[7] + a[1] * a[6],
+        d * e - a[1] * a[3],
+    ]
 }
 
 /// det(A − xI).
@@ -74,7 +111,7 @@ fn permanent(a: &[f64; 9], [d, e, f]: [f64; 3]) -> f64 {
 /// Whether an error of a few ulp in each product of the determinant moves a root only a little.
 fn settled(permanent: f64, slope: f64, step: f64) -> bool {
     // The rounding error is at most 8 units of half an ulp.
-    4.0 * permanent <= ULPS * slope && step <= 1e-12
+    4.0 * permanent <= ULPS * slope && step <= CONFIRMED
 }
 
 fn polished(a: &[f64; 9], start: f64) -> Option<f64> {
@@ -83,6 +120,9 @@ fn polished(a: &[f64; 9], start: f64) -> Option<f64> {
         // The derivative of det(A − xI) is minus the sum of minors.
         step = determinant(a, x) / minors(a, x);
         x += step;
+        if step.abs() <= CONFIRMED {
+            break;
+        }
     }
     let diagonal = [a[0] - x, a[4] - x, a[8] - x].map(f64::abs);
     settled(permanent(a, diagonal), minors(a, x).abs(), step.abs()).then_some(x)
@@ -94,12 +134,15 @@ fn polished_pair(a: &[f64; 9], start: Complex<f64>) -> Option<Complex<f64>> {
         let [d, e, f] = [a[0] - z, a[4] - z, a[8] - z];
         let value = d * (e * f - a[5] * a[7]) - (f * a[3] - a[5] * a[6]) * a[1] + (a[3] * a[7] - e * a[6]) * a[2];
         let derivative = (d * e - a[1] * a[3]) + (d * f - a[2] * a[6]) + (e * f - a[5] * a[7]);
-        slope = derivative.norm();
-        step = value / derivative;
+        slope = derivative.norm_sqr();
+        step = value * derivative.conj() / slope;
         z += step;
+        if step.norm_sqr() <= CONFIRMED * CONFIRMED {
+            break;
+        }
     }
     let diagonal = [a[0] - z, a[4] - z, a[8] - z].map(|x| x.norm_sqr().sqrt());
-    (z.im > 0.0 && settled(permanent(a, diagonal), slope, step.norm())).then_some(z)
+    (z.im > 0.0 && settled(permanent(a, diagonal), slope.sqrt(), step.norm_sqr().sqrt())).then_some(z)
 }
 
 #[cfg(test)]

@@ -64,6 +64,22 @@ impl Triangular {
         Ok(found)
     }
 
+    /// Q x, block by block, without what is 0.
+    pub(super) fn turned(&self, x: &[Complex<f64>]) -> Vec<Complex<f64>> {
+        let zero = Complex::new(0.0, 0.0);
+        let mut out = vec![zero; self.n];
+        for &(at, order) in &self.blocks {
+            let places = at..at + order;
+            for j in places.clone().filter(|&j| x[j] != zero) {
+                let column = &self.q.as_slice()[j * self.n..(j + 1) * self.n];
+                for (out, q) in out[places.clone()].iter_mut().zip(&column[places.clone()]) {
+                    *out += q * x[j];
+                }
+            }
+        }
+        out
+    }
+
     /// Puts a block at the next places of the diagonal, and above it what couples it to those before: Q_iᴴ A_ij Q_j.
     fn add(&mut self, block: &Block, entries: &[f64], exponent: i32) {
         let (n, start, m) = (self.n, self.units.len(), block.units.len());

@@ -30,7 +30,7 @@ impl Discriminant {
     }
 
     /// The terms must neither overflow nor all underflow.
-    fn of_scaled(&[a, b, c, d]: &[f64; 4]) -> Self {
+    pub(super) fn of_scaled(&[a, b, c, d]: &[f64; 4]) -> Self {
         let (difference, lost) = two_sum(a, -d);
         let (half, lost) = (difference / 2.0, lost / 2.0);
         let product = b * c;
@@ -63,11 +63,16 @@ fn scaled(&[a, b, c, d]: &[f64; 4]) -> ([f64; 4], i32) {
 /// A real pair: the one of larger modulus from the sum, the other as determinant over it, so that a small one keeps its
 /// digits; a complex pair is exactly conjugate.
 pub(super) fn values(entries: &[f64; 4]) -> [Complex<f64>; 2] {
+    // Within these no product of four can leave the range of f64, so powers of two change nothing.
+    let is_moderate = |x: &f64| *x == 0.0 || (1e-70..1e70).contains(&x.abs());
+    if entries.iter().all(is_moderate) {
+        return values_near_one(entries);
+    }
     let (near, exponent) = scaled(entries);
     values_near_one(&near).map(|z| Complex::new(times_power(z.re, exponent), times_power(z.im, exponent)))
 }
 
-/// As [`values`], of entries of which the largest is near 1.
+/// As [`values`], of entries whose products neither overflow nor underflow.
 pub(super) fn values_near_one(entries: &[f64; 4]) -> [Complex<f64>; 2] {
     let &[a, b, c, d] = entries;
     let real = |x: f64| Complex::new(x, 0.0);

@@ -5,6 +5,8 @@
 //! their lengths: no cancellation hides a defective eigenvalue. Where two eigenvalues agree to rounding the difference is
 //! replaced by that rounding; the vectors of a defective one then come out parallel and its condition huge.
 
+use std::ops::Range;
+
 use nalgebra::{Complex, DMatrix};
 
 use super::Vectors;
@@ -22,11 +24,11 @@ pub(super) fn vectors(form: &Triangular) -> Vectors {
     let adjoint = form.t.adjoint();
     let mut k = 0;
     while k < n {
-        let right = Long::solve(&form.t, form, k, &mut (0..k).rev());
-        let left = Long::solve(&adjoint, form, k, &mut (k + 1..n));
+        let right = Long::solve(&form.t, form, k, Side::Right);
+        let left = Long::solve(&adjoint, form, k, Side::Left);
         let real = form.values[k].im == 0.0;
-        let (right, right_length) = right.finish(form, 1, real);
-        let (left, left_length) = left.finish(form, -1, real);
+        let (right, right_length) = right.finish(form, Side::Right, real);
+        let (left, left_length) = left.finish(form, Side::Left, real);
         let condition = right_length.product(left_length);
         found.put(n, k, &right, &left, condition);
         k += 1;
@@ -46,6 +48,47 @@ impl Vectors {
             self.left[i * n + k] = left[i];
         }
         self.condition[k] = condition;
+    }
+}
+
+/// Which vectors.
+#[derive(Clone, Copy, PartialEq, Eq)]
+enum Side {
+    Right,
+    Left,
+}
+
+impl Side {
+    /// How many entries are to be found beside the k-th.
+    fn places(self, n: usize, k: usize) -> usize {
+        match self {
+            Self::Right => k,
+            Self::Left => n - 1 - k,
+        }
+    }
+
+    /// The `step`-th of them.
+    fn place(self, k: usize, step: usize) -> usize {
+        match self {
+            Self::Right => k - step,
+            Self::Left => k + step,
+        }
+    }
+
+    /// Those that come after the i-th.
+    fn beyond(self, n: usize, i: usize) -> Range<usize> {
+        match self {
+            Self::Right => 0..i,
+            Self::Left => i + 1..n,
+        }
+    }
+
+    /// Units of left vectors are the reciprocals.
+    fn sign(self) -> i32 {
+        match self {
+            Self::Right => 1,
+            Self::Left => -1,
+        }
     }
 }
 
@@ -70,27 +113,26 @@ struct Long {
 }
 
 impl Long {
-    /// Solves (M − μ I) x = 0 with x_k = 1, for M triangular with μ = M_kk, over the `places` that follow k in order.
-    fn solve(
-        matrix: &DMatrix<Complex<f64>>,
-        form: &Triangular,
-        k: usize,
-        places: &mut dyn Iterator<Item = usize>,
-    ) -> Self {
-        let zero = Complex::new(0.0, 0.0);
-        let mut x = Self { entries: vec![zero; form.n], exponent: 0 };
+    /// Solves (M − μ I) x = 0 with x_k = 1, for M triangular with μ = M_kk: above k for right vectors, below for left ones.
+    fn solve(matrix: &DMatrix<Complex<f64>>, form: &Triangular, k: usize, side: Side) -> Self {
+        let (n, zero) = (form.n, Complex::new(0.0, 0.0));
+        let mut x = Self { entries: vec![zero; n], exponent: 0 };
         x.entries[k] = Complex::new(1.0, 0.0);
+        let column = |j: usize| &matrix.as_slice()[j * n..(j + 1) * n];
         // What is still missing on the right side, updated column by column.
-        let mut right: Vec<Complex<f64>> = matrix.column(k).iter().map(|z| -z).collect();
-        for i in places {
+        let mut right: Vec<Complex<f64>> = column(k).iter().map(|z| -z).collect();
+        for step in 1..=side.places(n, k) {
+            let i = side.place(k, step);
             if right[i] == zero {
                 continue;
             }
             let entry = quotient(right[i], divisor(matrix, form, i, k));
             x.entries[i] = entry;
-            let column = matrix.column(i);
-            right.iter_mut().zip(column.iter()).for_each(|(r, m)| *r -= entry * m);
-            if entry.norm() > LARGEST {
+            let rest = side.beyond(n, i);
+            for (r, m) in right[rest.clone()].iter_mut().zip(&column(i)[rest]) {
+                *r -= entry * m;
+            }
+            if entry.norm_sqr() > LARGEST * LARGEST {
                 x.shrink(&mut right, entry);
             }
         }
@@ -105,11 +147,10 @@ impl Long {
         self.exponent = self.exponent.saturating_add(by);
     }
 
-    /// In the coordinates of A, at unit length, the largest entry real and positive; and the length that it had. `side` is
-    /// 1 for right vectors, −1 for left ones, whose units are the reciprocals.
-    fn finish(self, form: &Triangular, side: i32, real: bool) -> (Vec<Complex<f64>>, Length) {
-        let column = &form.q * DMatrix::from_vec(form.n, 1, self.entries);
-        let units: Vec<i32> = form.units.iter().map(|unit| side * unit).collect();
+    /// In the coordinates of A, at unit length, the largest entry real and positive; and the length that it had.
+    fn finish(self, form: &Triangular, side: Side, real: bool) -> (Vec<Complex<f64>>, Length) {
+        let column = form.turned(&self.entries);
+        let units: Vec<i32> = form.units.iter().map(|unit| side.sign() * unit).collect();
         let size = |k: usize| exponent_of(column[k].re.abs().max(column[k].im.abs())).map(|e| e + units[k]);
         let most = (0..form.n).filter_map(size).max().unwrap_or(0);
         let mut vector = vec![Complex::new(0.0, 0.0); form.n];

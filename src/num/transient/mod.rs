@@ -50,7 +50,7 @@ const NONE: Peak = Peak { factor: 1.0, time: 0.0 };
 /// If there are not n² entries.
 pub fn flow_peak(entries: &[f64], n: usize, stop: &dyn Fn() -> bool) -> Option<Peak> {
     let flow = Flow::new(entries, n)?;
-    let growth = eigen::symmetric(entries, n).ok()?.first().copied().unwrap_or(0.0);
+    let growth = eigen::largest_symmetric(entries, n).ok()?;
     if growth <= 0.0 {
         return Some(NONE);
     }
