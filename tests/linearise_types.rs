@@ -16,7 +16,7 @@ const E20: f64 = 1.0 / 1_048_576.0;
 const E40: f64 = E20 * E20;
 
 /// A matrix, the type of an equilibrium with it, and how many eigenvalues attract, are critical, repel. Everything is
-/// exact in f64, so all of it must be proved.
+/// exact in f64 and far enough from what else its decimals may stand for, so all of it must be proved.
 fn check(time: Time, matrix: &[f64], kind: Kind, dimensions: [usize; 3]) -> Linearisation {
     let n = if matrix.len() == 1 { 1 } else { (2..9).find(|n| n * n == matrix.len()).unwrap() };
     let found = at(&around_one(matrix, n, time), &vec![1.0; n]);
@@ -47,8 +47,9 @@ fn one_species() {
         (0.0, StableNode, [1, 0, 0]),
         (1.0, Undecided, [0, 1, 0]),
         (-1.0, Undecided, [0, 1, 0]),
-        (1.0 + f64::EPSILON, UnstableNode, [0, 0, 1]),
-        (f64::EPSILON / 2.0 - 1.0, StableNode, [1, 0, 0]),
+        // As near as bounds of what was written keep off the border.
+        (1.0 + 2.0 * f64::EPSILON, UnstableNode, [0, 0, 1]),
+        (f64::EPSILON - 1.0, StableNode, [1, 0, 0]),
         (-1.5, UnstableNode, [0, 0, 1]),
     ];
     for (multiplier, kind, dimensions) in maps {

@@ -1,7 +1,7 @@
 """Writes published.json: the facts of the catalogue of published models that tests need, in a compact form.
 
 Run:  python3 make.py CATALOGUE.json
-The catalogue is the client's file of open cases; nothing else is needed, and the same catalogue always gives the same
+The catalogue is a file of open cases; nothing else is needed, and the same catalogue always gives the same
 bytes. Prose that no test reads (notes, tags, groups) is left out; a key that is not known here is an error, so that
 nothing is lost unseen. Numbers stay decimal strings. What differs from the catalogue: `equations`, `box`, `x` and
 `jacobian` are lists in species order, an eigenvalue is its real part where it is real and [re, im] where not,

@@ -1,6 +1,6 @@
 """Writes double_references.csv: elementary functions to 32 digits.
 
-Run from this folder:  pip install mpmath==1.3.0 && python3 double_references.py
+Run from this folder:  pip install -r requirements.txt && python3 double_references.py
 It takes a second, needs nothing else, and always writes the same bytes.
 
 A line is  function,x,p,high,low : the f64 nearest to the exact value at the f64 x (and exponent p, 0 where there is none),

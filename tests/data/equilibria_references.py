@@ -1,6 +1,6 @@
 """Writes equilibria_references.csv: equilibria to 50 digits, as the two f64 around each coordinate.
 
-Run from this folder:  pip install mpmath==1.3.0 && python3 equilibria_references.py
+Run from this folder:  pip install -r requirements.txt && python3 equilibria_references.py
 It takes some seconds, needs nothing else, and always writes the same bytes.
 
 Models: those of equilibria_models.json, which `WRITE_MODELS=1 cargo test --test equilibria_references` makes from the

@@ -1,6 +1,6 @@
 """Writes interval_references.csv: hard arguments of every elementary function and quotient, with sharp bounds.
 
-Run from this folder:  pip install mpmath==1.3.0 && python3 interval_references.py
+Run from this folder:  pip install -r requirements.txt && python3 interval_references.py
 It takes some seconds, needs nothing else, and always writes the same bytes.
 
 A line is  function,k,x,p,below,above : the largest f64 that is not above the exact value and the smallest that is not

@@ -1,8 +1,8 @@
 """Writes measures.json: quantities of random stable matrices, and elasticities of small models, by numpy, scipy and mpmath.
 
-Run from this folder:  pip install -r requirements.txt && python3 measures.py [--check]
-With --check nothing is written: everything is computed again and compared with the file, to the digits that the tests use.
-It takes some minutes.
+Run from this folder:  pip install -r requirements.txt && python3 measures.py
+It takes some minutes. With --check nothing is written: everything is computed again and compared with the file, to the
+digits that the tests use. With --check K that is every K-th matrix, the first stiff one and all models, in seconds.
 
 matrices: orders 2 to 12, rates and maps, well and badly scaled. For rates: reactivity by numpy.linalg.eigvalsh; the
 largest norm of scipy.linalg.expm on a grid that is dense on a logarithmic and on a linear axis, the highest places of
@@ -75,16 +75,14 @@ def maps(n, spread):
     return a * units[None, :] / units[:, None]
 
 
-def matrix(kind, n, spread):
+def measured(kind, n, a):
     if kind == "rates":
-        a = rates(n, spread)
         factor, time = peak(a)
         reactivity = max(np.linalg.eigvalsh((a + a.T) / 2))
         covariance = scipy.linalg.solve_continuous_lyapunov(a, -np.eye(n))
         lifted = np.kron(a, np.eye(n)) + np.kron(np.eye(n), a)
         effects = np.linalg.inv(-a)
     else:
-        a = maps(n, spread)
         factor, time = map_peak(a)
         reactivity = float(np.log(norm(a)))
         covariance = scipy.linalg.solve_discrete_lyapunov(a, np.eye(n))
@@ -194,9 +192,13 @@ def model(name):
     return out
 
 
-def everything():
-    cases = [matrix(kind, n, spread) for kind in ("rates", "maps") for n in range(2, 13) for spread in (0.0, 3.0)]
-    return {"matrices": cases, "stiff": [stiff(a) for a in STIFF], "models": {name: model(name) for name in MODELS}}
+def everything(every):
+    makers = [(kind, n, spread) for kind in ("rates", "maps") for n in range(2, 13) for spread in (0.0, 3.0)]
+    # All are drawn, for each takes its numbers from where the one before has left off.
+    drawn = [(kind, n, rates(n, spread) if kind == "rates" else maps(n, spread)) for kind, n, spread in makers]
+    cases = [measured(*case) for case in drawn[::every]]
+    matrices = STIFF if every == 1 else STIFF[:1]
+    return {"matrices": cases, "stiff": [stiff(a) for a in matrices], "models": {name: model(name) for name in MODELS}}
 
 
 def differ(new, old, place=""):
@@ -211,11 +213,23 @@ def differ(new, old, place=""):
     return [] if new == old else [f"{place}: {new} {old}"]
 
 
-found = everything()
-if "--check" in sys.argv:
-    wrong = differ(found, json.loads(OUT.read_text()))
-    print("\n".join(wrong) if wrong else "as in the file")
+def check(every):
+    """Compares what is asked for with the file; see the head."""
+    old = json.loads(OUT.read_text())
+    found = everything(every)
+    old["matrices"] = old["matrices"][::every]
+    if every > 1:
+        old["stiff"] = old["stiff"][:len(found["stiff"])]
+    wrong = differ(found, old)
+    count = len(found["matrices"]) + len(found["stiff"]) + len(found["models"])
+    print("\n".join(wrong) if wrong else f"{count} cases of measures.json agree")
     sys.exit(bool(wrong))
+
+
+if "--check" in sys.argv:
+    rest = sys.argv[sys.argv.index("--check") + 1:]
+    check(int(rest[0]) if rest else 1)
+found = everything(1)
 lines = ",\n  ".join(json.dumps(case) for case in found["matrices"])
 OUT.write_text(
     f'{{"matrices": [\n  {lines}],\n "stiff": {json.dumps(found["stiff"])},\n'

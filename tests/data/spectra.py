@@ -1,6 +1,6 @@
 """Writes spectra.json: matrices of order 2 to 50 that are hard in some way, with their eigenvalues from elsewhere.
 
-Run from this folder:  pip install -r spectra_requirements.txt && python3 spectra.py
+Run from this folder:  pip install -r requirements.txt && python3 spectra.py
 With --check it writes nothing, works all out again, and compares with the file: matrices exactly, values within what their
 condition allows, since another BLAS rounds otherwise. Either takes some seconds.
 

@@ -31,8 +31,10 @@ enum Look {
 /// A Jacobian in every form that a decision may need.
 pub(super) struct Linear<'l> {
     pub(super) numbers: &'l [f64],
-    /// Empty where nothing is known.
+    /// Of the model as written, by which signs are judged; empty where nothing is known.
     pub(super) enclosure: &'l [Interval],
+    /// Of the f64 numbers, by which what is exactly equal is; empty where nothing is known.
+    pub(super) exact: &'l [Interval],
     pub(super) spectrum: &'l Spectrum,
     pub(super) proof: &'l Proof,
     pub(super) border: Border,
@@ -87,14 +89,20 @@ impl Linear<'_> {
         let equal = if numbers[1] == 0.0 && numbers[2] == 0.0 { Look::Star } else { Look::Improper };
         if let &[a, b, c, d] = self.enclosure {
             let discriminant = Planar { a, b, c, d }.discriminant();
-            let apart = |x: Interval| !x.contains_zero();
-            match discriminant {
-                sign if sign.lo() > 0.0 => return (Look::Node, true),
-                sign if sign.hi() < 0.0 => return (Look::Spiral, true),
-                Interval::ZERO if b == Interval::ZERO && c == Interval::ZERO => return (Look::Star, true),
-                Interval::ZERO => return (Look::Improper, apart(b) || apart(c) || apart(a - d)),
-                _ => {}
+            if discriminant.lo() > 0.0 {
+                return (Look::Node, true);
+            } else if discriminant.hi() < 0.0 {
+                return (Look::Spiral, true);
             }
+        }
+        if let &[a, b, c, d] = self.exact
+            && (Planar { a, b, c, d }).discriminant() == Interval::ZERO
+        {
+            let apart = |x: Interval| !x.contains_zero();
+            return match b == Interval::ZERO && c == Interval::ZERO {
+                true => (Look::Star, true),
+                false => (Look::Improper, apart(b) || apart(c) || apart(a - d)),
+            };
         }
         let discriminant = Discriminant::of(&numbers);
         let look = if discriminant.is_zero() {

@@ -3,7 +3,7 @@
 //!
 //! The words here are the contract's. [`Kind`] and [`Linearisation::stable`] speak of the linear part alone;
 //! [`Nonlinear`] answers where an eigenvalue is critical: real part 0, for a map modulus 1. Start at [`Lineariser`].
-//! `jacobian` evaluates, `proof` (on `planar` and `place`) says what holds for every Jacobian between the bounds, `critical`
+//! `jacobian` evaluates, `written` does so for the numbers as the file has them, `proof` (on `planar` and `place`) says what holds for every Jacobian between the bounds, `critical`
 //! how much a computed eigenvalue may be off, `classify` makes words of both, `nonlinear` looks at the higher terms.
 
 mod classify;
@@ -13,6 +13,7 @@ mod nonlinear;
 mod place;
 mod planar;
 mod proof;
+mod written;
 
 use nalgebra::Complex;
 
@@ -163,8 +164,8 @@ impl Lineariser {
 
     /// The linear part at an equilibrium of the scenario.
     ///
-    /// Everything proved is proved for the exact equilibrium that the enclosure holds, so only where it is proved that
-    /// there is one.
+    /// Everything proved is proved for an exact equilibrium, so only where it is proved that there is one; and of the model
+    /// as the file has it, decimals and all, so only where that has one as well.
     ///
     /// # Panics
     /// If the equilibrium is not one of as many species.
@@ -178,28 +179,31 @@ impl Lineariser {
         };
         let n = equilibrium.state.len();
         let spectrum = self.ordered(spectrum(&jacobian, n).map_err(Unavailable::Eigenvalues)?);
-        let proof = if equilibrium.proven && !enclosure.is_empty() {
-            Proof::of(&enclosure, n, self.border)
-        } else {
-            Proof::default()
-        };
+        let exact = if equilibrium.proven { &enclosure[..] } else { &[] };
+        let written = if exact.is_empty() { None } else { self.rows.as_written(equilibrium) };
+        let proof = written
+            .as_ref()
+            .map_or_else(Proof::default, |written| Proof::as_written(&written.jacobian, exact, n, self.border));
         let linear = Linear {
             numbers: &jacobian,
-            enclosure: if equilibrium.proven { &enclosure } else { &[] },
+            enclosure: written.as_ref().map_or(exact, |written| &written.jacobian),
+            exact,
             spectrum: &spectrum,
             proof: &proof,
             border: self.border,
         };
         let class = linear.class();
-        let nonlinear = nonlinear::judge(&nonlinear::Critical {
+        let critical = nonlinear::Critical {
             rows: &self.rows,
+            numbers: nonlinear::Numbers::AsF64,
             equilibrium,
             enclosure: &enclosure,
             spectrum: &spectrum,
             proof: &proof,
             class: &class,
             border: self.border,
-        });
+        };
+        let nonlinear = nonlinear::judge(&critical, written.as_ref());
         let leading = spectrum.values.first();
         Ok(Linearisation {
             alternating: self.border == Border::Circle && leading.is_some_and(|z| z.im == 0.0 && z.re < 0.0),

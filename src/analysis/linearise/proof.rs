@@ -37,6 +37,17 @@ impl Proof {
         proof
     }
 
+    /// Of the model as written, with what is exactly critical from the f64 numbers: two enclosures of the Jacobian of order
+    /// `n`, row by row, the first of which holds the second.
+    pub(super) fn as_written(written: &[Interval], exact: &[Interval], n: usize, border: Border) -> Self {
+        let proof = Self::of(written, n, border);
+        if proof.below + proof.above == n {
+            return proof;
+        }
+        let Self { critical, critical_pair, .. } = Self::of(exact, n, border);
+        Self { critical, critical_pair, ..proof }
+    }
+
     fn add_block(&mut self, block: &[Interval], m: usize, border: Border) {
         match *block {
             [a] => {

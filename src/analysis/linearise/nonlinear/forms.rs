@@ -3,34 +3,33 @@
 //! With f(x + t w) = f + t f′ + t² c₂(w) + t³ c₃(w) + …: B(w, w) = 2 c₂(w), C(w, w, w) = 6 c₃(w). Mixed ones by
 //! polarisation: B(u, v) = [c₂(u + v) − c₂(u − v)]/2 and C(u, u, v) = c₃(u + v) − c₃(u − v) − 2 c₃(v).
 
+use crate::analysis::linearise::jacobian::Bounds;
 use crate::expr::tape::Tape;
 use crate::expr::tape::jet::Jet;
-use crate::expr::tape::number::{Domain, Number};
+use crate::expr::tape::number::Domain;
 use crate::expr::tape::run::Run;
 use crate::num::interval::Interval;
 
 use super::complex::{Vector, combined};
 
+/// c₂(w) and c₃(w), one entry an equation.
+type Along = Option<[Vec<Interval>; 2]>;
+
 /// Derivatives of some equations at a point between bounds.
 pub(super) struct Forms<'t> {
-    run: Run<'t, Jet<Interval>>,
-    at: &'t [Interval],
+    along: Box<dyn FnMut(&[Interval]) -> Along + 't>,
 }
 
 impl<'t> Forms<'t> {
-    pub(super) fn new(tape: &'t Tape, values: &[f64], at: &'t [Interval]) -> Self {
-        let values: Vec<Jet<Interval>> = values.iter().map(|&value| Jet::constant(value)).collect();
-        Self { run: tape.start(&values), at }
+    pub(super) fn new<T: Bounds + 't>(tape: &'t Tape, parameters: &[T], at: &'t [Interval]) -> Self {
+        let still = |value: &T| Jet::line(value.clone(), T::constant(0.0));
+        let mut run = tape.start(&parameters.iter().map(still).collect::<Vec<_>>());
+        Self { along: Box::new(move |w| along(&mut run, at, w)) }
     }
 
     /// c₂(w) and c₃(w), one entry an equation; `None` where the equations are not as smooth as that.
-    pub(super) fn along(&mut self, w: &[Interval]) -> Option<[Vec<Interval>; 2]> {
-        let line: Vec<Jet<Interval>> = self.at.iter().zip(w).map(|(&x, &w)| Jet::line(x, w)).collect();
-        let domain = self.run.at(&line);
-        let order = |k: usize| self.run.outputs().map(|jet| jet.0[k]).collect::<Vec<_>>();
-        let found = [order(2), order(3)];
-        let bounded = found.iter().flatten().all(|side| side.is_bounded());
-        (domain == Domain::CLEAN && bounded).then_some(found)
+    pub(super) fn along(&mut self, w: &[Interval]) -> Along {
+        (self.along)(w)
     }
 
     /// B(u, v)
@@ -63,4 +62,13 @@ impl<'t> Forms<'t> {
         let [rrs, sss] = [self.third(&q.re, &q.im)?, self.third(&q.im, &q.im)?];
         Some(Vector { re: combined(&rrr, &ssr, 1.0), im: combined(&rrs, &sss, 1.0) })
     }
+}
+
+fn along<T: Bounds>(run: &mut Run<'_, Jet<T>>, at: &[Interval], w: &[Interval]) -> Along {
+    let line: Vec<Jet<T>> = at.iter().zip(w).map(|(&x, &w)| Jet::line(T::around(x), T::around(w))).collect();
+    let domain = run.at(&line);
+    let order = |k: usize| run.outputs().map(|jet| jet.0[k].bounds()).collect::<Vec<_>>();
+    let found = [order(2), order(3)];
+    let bounded = found.iter().flatten().all(|side| side.is_bounded());
+    (domain == Domain::CLEAN && bounded).then_some(found)
 }

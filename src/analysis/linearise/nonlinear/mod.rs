@@ -16,6 +16,7 @@ use super::classify::Class;
 use super::jacobian::Rows;
 use super::place::{Border, Place};
 use super::proof::Proof;
+use super::written::AsWritten;
 use super::{Kind, Nonlinear, Test, Verdict};
 use crate::analysis::equilibria::Equilibrium;
 use crate::num::eigen::Spectrum;
@@ -23,9 +24,24 @@ use crate::num::interval::Interval;
 use complex::Scalar;
 use forms::Forms;
 
+/// How far a critical pair may lie from where the f64 numbers have it, relative to its parts: far more than rounding errors
+/// of a matrix whose type can be proved at all.
+const BESIDE: f64 = 1e-10;
+
+/// Which numbers derivatives are taken for.
+#[derive(Clone, Copy, PartialEq, Eq)]
+pub(super) enum Numbers {
+    /// The f64 that the program works with.
+    AsF64,
+    /// Those of the model file.
+    AsWritten,
+}
+
 /// An equilibrium with a critical eigenvalue.
+#[derive(Clone, Copy)]
 pub(super) struct Critical<'c> {
     pub(super) rows: &'c Rows,
+    pub(super) numbers: Numbers,
     pub(super) equilibrium: &'c Equilibrium,
     /// Bounds of the Jacobian.
     pub(super) enclosure: &'c [Interval],
@@ -35,8 +51,21 @@ pub(super) struct Critical<'c> {
     pub(super) border: Border,
 }
 
-/// What the nonlinear terms say; `None` unless an eigenvalue is critical and none repels.
-pub(super) fn judge(critical: &Critical<'_>) -> Option<Nonlinear> {
+/// What the nonlinear terms say; `None` unless an eigenvalue is critical and none repels. Proved only where the numbers as
+/// written say the same.
+pub(super) fn judge(critical: &Critical<'_>, written: Option<&AsWritten>) -> Option<Nonlinear> {
+    let found = of(critical)?;
+    if !found.proven {
+        return Some(found);
+    }
+    let again = written.and_then(|AsWritten { equilibrium, jacobian }| {
+        of(&Critical { numbers: Numbers::AsWritten, equilibrium, enclosure: jacobian, ..*critical })
+    });
+    let proven = again.is_some_and(|again| (again.verdict, again.test) == (found.verdict, found.test));
+    Some(Nonlinear { proven, ..found })
+}
+
+fn of(critical: &Critical<'_>) -> Option<Nonlinear> {
     let dimensions = critical.class.dimensions;
     if dimensions.centre == 0 || dimensions.unstable > 0 {
         return None;
@@ -73,7 +102,11 @@ impl Critical<'_> {
     }
 
     fn forms(&self) -> Forms<'_> {
-        Forms::new(&self.rows.whole, &self.rows.values, &self.equilibrium.enclosure)
+        let Rows { whole, exact, written, .. } = self.rows;
+        match self.numbers {
+            Numbers::AsF64 => Forms::new(whole, exact, &self.equilibrium.enclosure),
+            Numbers::AsWritten => Forms::new(whole, written, &self.equilibrium.enclosure),
+        }
     }
 
     /// Left and right eigenvector of the first critical eigenvalue, approximately.
@@ -93,7 +126,12 @@ impl Critical<'_> {
     /// The critical pair's eigenvalue above the real axis, as it is proved or, put on the border, as it was computed.
     fn on_border(&self) -> Option<Scalar> {
         if let Some(Place { re, im, .. }) = self.proof.critical_pair {
-            return Some([re, im]);
+            // As written it lies elsewhere on the border, by some rounding errors of the entries.
+            let around = |x: Interval| match self.numbers {
+                Numbers::AsF64 => x,
+                Numbers::AsWritten => x * Interval::new(1.0 - BESIDE, 1.0 + BESIDE),
+            };
+            return Some([around(re), around(im)]);
         }
         let value = self.spectrum.values[*self.class.critical.first()?];
         let value = match self.border {
