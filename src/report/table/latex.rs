@@ -35,7 +35,7 @@ pub fn latex(table: &Table<'_>, page: Page) -> String {
         }
     }
     let meanings = words::meanings(table);
-    parts.extend(meanings.iter().map(|(word, meaning)| format!("\\emph{{{word}}}: {meaning}")));
+    parts.extend(meanings.iter().map(|(word, meaning)| format!("\\emph{{{word}}}: {}", escaped(meaning, &page))));
     parts.push(words::CAUTION.to_owned());
     parts.join("\n\n") + "\n"
 }
