@@ -93,6 +93,8 @@ pub(super) fn from_now_in_words(place: Place<'_>, from: &FromNow) -> String {
     let lowest = match lowest.len() {
         0 => String::new(),
         _ if is_long => "; json has the lowest of each species on the way".to_owned(),
+        // What was broken off may yet fall lower.
+        _ if from.reaches == Destination::NotSettled => format!("; lowest until then {}", lowest.join(", ")),
         _ => format!("; lowest on the way {}", lowest.join(", ")),
     };
     let end = ends(place, &from.reaches);

@@ -32,11 +32,12 @@ pub(super) fn meanings(table: &Table<'_>) -> Vec<(&'static str, &'static str)> {
     let any_type = |proven| linear().any(|linear| linear.kind_proven == proven || linear.stable_proven == proven);
     let is_open = solved().any(|solved| !solved.equilibria.unresolved.is_empty());
     let has_types = table.columns(&[Shown::Everywhere]).iter().any(|column| ["type", "stable"].contains(&column.id));
+    let follows_paths = solved().any(|solved| solved.assessment.from_now.is_some());
     let proved = if any_type(true) && has_types { PROVED_TYPE } else { PROVED };
     let numerical = if linear().next().is_some() { NUMERICAL_MEASURES } else { NUMERICAL };
     let all = [
         (any_state(true) || any_type(true), proof(true), proved),
-        (any_state(false) || linear().next().is_some(), proof(false), numerical),
+        (any_state(false) || linear().next().is_some() || follows_paths, proof(false), numerical),
         (is_open, UNDECIDED, "a part of the search box that may hold equilibria or none."),
     ];
     let words = all.into_iter().filter_map(|(is_used, word, meaning)| is_used.then_some((word, meaning)));
