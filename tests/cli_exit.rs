@@ -45,6 +45,9 @@ fn what_is_not_understood_ends_with_2_and_says_what_was_meant() {
     table(&["--colour", "never"], "'--color'");
     table(&["--columns", "sate"], "did you mean \"state\"?");
     check(&["table"], 2, "", "<MODEL>");
+    check(&["tabel", MOOR], 2, "", "there is no command \"tabel\"; did you mean \"table\"?");
+    check(&["plot", MOOR], 2, "", "there is no command \"plot\"; there are check, table, sketch");
+    check(&[MOOR, "another"], 2, "", "unexpected argument 'another'");
     check(&["--columns", "state", "table", MOOR], 2, "", "--columns belongs after the command");
     check(&["--strict", "table", MOOR], 2, "", "--strict belongs after the command");
     check(&[MOOR, "check", MOOR], 2, "", "belongs after the command");
@@ -118,9 +121,14 @@ fn options_do_what_they_say() {
     let two =
         ["table", MOOR, "--scenario", "more heather", "--scenario", "present shooting", "--scenario", "more heather"];
     assert_eq!(scenarios(&two), ["present shooting", "more heather"]);
-    check_on(FOLD, &["-", "--set", "a=3", "--set", "a=2.5", "--scenario", "plain"], 0, "  E2  2.500  proved ", "");
+    check_on(FOLD, &["-", "--set", "a=3", "--set", "a=2.5", "--scenario", "plain"], 0, "  E2  2.500  proved, ", "");
     // Without shooting and hawks, grouse reach what the heather carries.
-    check(&["table", MOOR, "--set", "E=0", "--scenario", "present shooting"], 0, "  E2   160.0    0       proved ", "");
+    check(
+        &["table", MOOR, "--set", "E=0", "--scenario", "present shooting"],
+        0,
+        "  E2   160.0    0       proved, ",
+        "",
+    );
     check(&["table", MOOR, "--budget", "7.5"], 0, "7.5 s for each scenario", "");
     let plain = run(&["table", MOOR]).out;
     assert!(!plain.contains('\u{1b}'));

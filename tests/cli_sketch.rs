@@ -65,7 +65,7 @@ fn each_scenario_is_drawn_in_the_same_window() {
     let one = sketch(&[BANK, "--scenario", "half the effort", "--set", "E=0", "--ascii"]);
     assert!(one.out.is_ascii() && one.out.matches("Scenario: ").count() == 1, "{}", one.out);
     // Without effort the dab alone reach what the bank carries of them.
-    assert!(one.out.contains("P = 0, D = 160.0;"), "{}", one.out);
+    assert!(one.out.contains("P = 0, D = 160.0, proved; "), "{}", one.out);
     let turned = sketch(&[REEF, "--axes", "L,U", "--scenario", "present pots"]);
     assert!(turned.out.contains("\nU urchin, ind/m2\n") && turned.out.contains("Held as at"), "{}", turned.out);
 }

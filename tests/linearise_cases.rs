@@ -4,7 +4,7 @@
 
 mod common;
 
-use common::cases::{Case, Equilibrium, all, type_word};
+use common::cases::{Case, Equilibrium, all};
 use common::linear::{Linear, linear};
 use nalgebra::Complex;
 use restpoint::analysis::linearise::{Linearisation, Verdict};
@@ -22,13 +22,6 @@ const CLUSTER: f64 = 1e-7;
 
 fn matrix(published: &Equilibrium) -> Option<Vec<f64>> {
     published.jacobian.as_ref().map(|rows| rows.concat())
-}
-
-/// Whether an eigenvalue is so near the border that rounding the parameters may decide on which side it is.
-fn is_degenerate(case: &Case, published: &Equilibrium) -> bool {
-    let largest = published.eigenvalues.iter().fold(0.0f64, |most, (re, im)| most.max(re.hypot(*im)));
-    let distance = |&(re, im): &(f64, f64)| if case.discrete { re.hypot(im) - 1.0 } else { re };
-    published.eigenvalues.iter().any(|value| distance(value).abs() <= 1e-9 * largest)
 }
 
 /// The found equilibrium at a published state, if it was found: a double root is not.
@@ -50,7 +43,7 @@ fn each(mut check: impl FnMut(&str, &Case, &Equilibrium, &Linearisation)) -> usi
                 match matching(&found, published) {
                     Some((_, Ok(linear))) => check(&name, &case, published, linear),
                     Some((_, Err(why))) => panic!("{name}: {why:?}"),
-                    None => assert!(is_degenerate(&case, published) || case.species.len() > 6, "{name} is missing"),
+                    None => assert!(case.is_degenerate(published) || case.species.len() > 6, "{name} is missing"),
                 }
                 pairs += 1;
             }
@@ -126,32 +119,18 @@ fn eigenvalues_are_the_published_ones() {
     assert!(compared > 400, "{compared}");
 }
 
-/// The published eigenvalue of largest real part or modulus.
-fn leading(case: &Case, published: &Equilibrium) -> (f64, f64) {
-    let size = |&(re, im): &(f64, f64)| if case.discrete { re.hypot(im) } else { re };
-    let leading = published.eigenvalues.iter().max_by(|a, b| size(a).total_cmp(&size(b)));
-    *leading.unwrap()
-}
-
-/// The contract's word: above two species a spiral is one whose leading eigenvalues are a pair.
-fn word(case: &Case, published: &Equilibrium) -> String {
-    let word = type_word(&published.linear_type);
-    let complex = leading(case, published).1 != 0.0;
-    if published.x.len() > 2 && !complex { word.replace("spiral", "node") } else { word.to_owned() }
-}
-
 #[test]
 fn types_are_the_published_ones_and_proved() {
     each(|name, case, published, found| {
-        assert_eq!(kinds::of(found.kind).word, word(case, published), "{name}: {:?}", found.spectrum.values);
+        assert_eq!(kinds::of(found.kind).word, case.word(published), "{name}: {:?}", found.spectrum.values);
         let [stable, unstable, centre] = published.counts;
         let dimensions = found.dimensions;
         assert_eq!([dimensions.stable, dimensions.unstable, dimensions.centre], [stable, unstable, centre], "{name}");
-        let (re, im) = leading(case, published);
+        let (re, im) = case.leading(published);
         assert_eq!(found.alternating, case.discrete && im == 0.0 && re < 0.0, "{name}");
         // Equal eigenvalues are a border of types too.
-        let equal = word(case, published).contains("star") || word(case, published).contains("improper");
-        if !is_degenerate(case, published) {
+        let equal = case.word(published).contains("star") || case.word(published).contains("improper");
+        if !case.is_degenerate(published) {
             assert!(found.stable_proven, "{name}: stability is not proved");
             assert!(found.kind_proven || equal, "{name}: {:?} is not proved: {:?}", found.kind, found.spectrum.values);
         }

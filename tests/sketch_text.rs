@@ -116,7 +116,7 @@ fn what_is_held_and_what_is_elsewhere_is_said() {
     let text = words(sized(70, 16));
     // The state with all three: a = 1, b = 4, c = 100.
     assert!(text.contains("Held as at E8: c = 100.0"), "{text}");
-    assert!(text.contains("E8: a = 1.000, b = 4.000; type not computed; "), "{text}");
+    assert!(text.contains("E8: a = 1.000, b = 4.000, proved; type not computed"), "{text}");
     assert!(text.contains("Not in this slice: E1, E2, E3, E5."), "{text}");
     assert!(text.contains("what one step adds to the state"), "{text}");
     assert!(text.contains("today's stocks: a = 2.000, b = 1.000; other species are not as held here"), "{text}");
@@ -125,7 +125,7 @@ fn what_is_held_and_what_is_elsewhere_is_said() {
     let narrow = Window { x: [0.0, 1.5], y: [0.0, 2.0] };
     let text = words(Seen { window: Some(narrow), ..sized(70, 16) });
     assert!(
-        text.contains("E8: a = 1.000, b = 4.000; type not computed; proved; outside the part that is drawn"),
+        text.contains("E8: a = 1.000, b = 4.000, proved; type not computed; outside the part that is drawn"),
         "{text}"
     );
     assert!(text.contains("Today's stocks, a = 2.000, b = 1.000, lie outside the part that is drawn."), "{text}");

@@ -177,9 +177,9 @@ fn asked_columns_are_shown_in_the_order_asked_for() {
     let shown = with_table_of(&model(), Some("damping_ratio,state"), |table| {
         text(table, Page { width: 80, style: Style::Unicode, color: false })
     });
-    let heads = "      damping\n        ratio      S   κ  state\n                  kt  kt\n";
+    let heads = "      damping\n        ratio      S   κ  state\n                  kt  kt  error\n";
     assert!(shown.contains(heads), "{shown}");
-    assert!(shown.contains("  E2   0.2530  900.0   0  proved\n"), "{shown}");
+    assert!(shown.contains("  E2   0.2530  900.0   0  proved, "), "{shown}");
 }
 
 #[test]

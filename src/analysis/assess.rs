@@ -13,7 +13,8 @@ pub struct Assessed {
     pub linear: Result<Linearisation, Unavailable>,
     /// What the linear part means.
     pub measures: Measures,
-    /// What a path released beside an unstable state of coexistence goes to; `None` for all others.
+    /// What a path released beside an unstable state of coexistence goes to; `None` for all others, and where it comes back
+    /// because only absent species can upset the state.
     pub settles: Option<Destination>,
 }
 
@@ -42,7 +43,9 @@ pub fn assess(subject: &mut Subject<'_>, equilibria: &Equilibria, stop: &dyn Fn(
     let mut paths = Paths::new(subject, list, &parts, stop);
     let mut release = |which: usize| {
         let unstable = parts[which].is_some_and(|linear| is_unstable_coexistence(subject, &list[which], linear));
-        unstable.then(|| paths.settles(subject, which))
+        let to = unstable.then(|| paths.settles(subject, which))?;
+        // It holds among those who are there and only lets others in: no path without them leaves it.
+        (to != Destination::Equilibrium(which)).then_some(to)
     };
     let settles: Vec<Option<Destination>> = (0..list.len()).map(&mut release).collect();
     let from_now = paths.from_now(subject);

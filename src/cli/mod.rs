@@ -7,10 +7,13 @@
 use std::io::{self, IsTerminal, Write};
 use std::process::ExitCode;
 
-use clap::Parser;
+use clap::error::{ContextKind, ErrorKind};
+use clap::{CommandFactory, Parser};
 
 use arguments::{Arguments, Color, Command, Options};
 
+use crate::diag::cleanse::cleanse;
+use crate::diag::nearest::nearest;
 use crate::shell::{files, terminal};
 
 mod arguments;
@@ -79,7 +82,31 @@ pub fn main() -> ExitCode {
     }
 }
 
+/// That the first word is no command, where another word follows it: it was hardly meant as the model's name.
+fn no_such_command(error: &clap::Error) -> Option<String> {
+    let stray = error.get(ContextKind::InvalidArg)?.to_string();
+    let first = std::env::args_os().nth(1)?.into_string().ok()?;
+    let is_command = first.chars().all(char::is_alphabetic);
+    if error.kind() != ErrorKind::UnknownArgument || stray.starts_with('-') || !is_command {
+        return None;
+    }
+    let command = Arguments::command();
+    let names: Vec<&str> = command.get_subcommands().map(clap::Command::get_name).collect();
+    let first = cleanse(&first);
+    if names.contains(&first.as_ref()) {
+        return None;
+    }
+    Some(match nearest(&first, names.iter().copied()) {
+        Some(near) => format!("error: there is no command \"{first}\"; did you mean \"{near}\"?\n"),
+        None => format!("error: there is no command \"{first}\"; there are {}\n", names.join(", ")),
+    })
+}
+
 fn usage(error: &clap::Error) -> Exit {
+    if let Some(reason) = no_such_command(error) {
+        complain(&reason);
+        return Exit::Usage;
+    }
     // Help and version were asked for; they go to standard output and are no mistake. Nor is a reader that has gone away.
     let printed = match error.print() {
         Err(error) if error.kind() == io::ErrorKind::BrokenPipe => Ok(()),

@@ -107,6 +107,27 @@ impl Case {
     pub fn lists(&self) -> impl Iterator<Item = &[Equilibrium]> {
         std::iter::once(&self.equilibria[..]).chain(self.scenarios.iter().map(|scenario| &scenario.equilibria[..]))
     }
+
+    /// Whether an eigenvalue is so near the border that rounding the parameters may decide on which side it is.
+    pub fn is_degenerate(&self, published: &Equilibrium) -> bool {
+        let largest = published.eigenvalues.iter().fold(0.0f64, |most, (re, im)| most.max(re.hypot(*im)));
+        let distance = |&(re, im): &(f64, f64)| if self.discrete { re.hypot(im) - 1.0 } else { re };
+        published.eigenvalues.iter().any(|value| distance(value).abs() <= 1e-9 * largest)
+    }
+
+    /// The published eigenvalue of largest real part or modulus.
+    pub fn leading(&self, published: &Equilibrium) -> (f64, f64) {
+        let size = |&(re, im): &(f64, f64)| if self.discrete { re.hypot(im) } else { re };
+        let leading = published.eigenvalues.iter().max_by(|a, b| size(a).total_cmp(&size(b)));
+        *leading.unwrap()
+    }
+
+    /// The contract's word: above two species a spiral is one whose leading eigenvalues are a pair.
+    pub fn word(&self, published: &Equilibrium) -> String {
+        let word = type_word(&published.linear_type);
+        let complex = self.leading(published).1 != 0.0;
+        if published.x.len() > 2 && !complex { word.replace("spiral", "node") } else { word.to_owned() }
+    }
 }
 
 impl Equilibrium {

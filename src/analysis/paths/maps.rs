@@ -22,6 +22,9 @@ const LONGEST: usize = 64;
 const LOOK_EVERY: usize = 128;
 /// Relative distance from the limit at which a cycle has been reached.
 const CLOSE: f64 = 1e-9;
+/// Relative difference of two points of a cycle that are one point, once the cycle is as close as [`CLOSE`]: what is left
+/// of a smaller cycle's own approach then.
+const NEARLY: f64 = 1e-7;
 /// Relative differences that are rounding.
 const NOISE: f64 = 1e-13;
 /// An abundance so many times above its box has left for good.
@@ -158,7 +161,10 @@ impl Orbit<'_> {
             let (late, early) = (apart(new, old), apart(old, older));
             let ratio = late / early.max(f64::MIN_POSITIVE);
             let closes = late <= NOISE || (late <= CLOSE && ratio < 1.0 && late * ratio / (1.0 - ratio) <= CLOSE);
-            closes.then_some((k, dying))
+            // Where turns alternate about a cycle that attracts, two of them close sooner than one.
+            let closes_too = |shorter: &usize| k % shorter == 0 && apart(new, self.state(last - shorter)) <= NEARLY;
+            let length = if closes { (1..k).find(closes_too).unwrap_or(k) } else { k };
+            closes.then_some((length, dying))
         })
     }
 

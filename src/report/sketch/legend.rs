@@ -5,7 +5,7 @@ use super::signs::{Growth, Mark, flow, listed};
 use super::{Picture, Style, View};
 use crate::analysis::equilibria::Equilibria;
 use crate::analysis::field::Held;
-use crate::analysis::linearise::Unavailable;
+use crate::analysis::linearise::{Kind, Unavailable};
 use crate::model::{Model, TimeKind};
 use crate::report::table::{Page, human};
 
@@ -106,7 +106,7 @@ fn equilibrium(view: &View<'_>, picture: &Picture, index: usize, page: &Page) ->
     let look = view.look(index);
     let id = view.ids.get(index).map_or("", String::as_str);
     let there = if found.proven { "proved" } else { "numerical" };
-    let mut said = format!("{id}: {}; {}; {there}", at(view, place), kind(view, index));
+    let mut said = format!("{id}: {}, {there}; {}", at(view, place), kind(view, index));
     let frame = picture.frame();
     match frame.cell(if view.slice.y.is_some() { place } else { [place[0], 0.0] }) {
         None => said += "; outside the part that is drawn",
@@ -127,8 +127,9 @@ fn kind(view: &View<'_>, index: usize) -> String {
         None => "type not computed".to_owned(),
         Some(Err(Unavailable::NoDerivative(_))) => "no type, for the rates have no derivative here".to_owned(),
         Some(Err(Unavailable::Eigenvalues(_))) => "no type, for the eigenvalues could not be computed".to_owned(),
-        Some(Ok(linear)) if linear.kind_proven => view.look(index).word.to_owned(),
-        Some(Ok(_)) => format!("{} (type numerical)", view.look(index).word),
+        Some(Ok(linear)) if linear.kind == Kind::Undecided => view.look(index).word.to_owned(),
+        Some(Ok(linear)) if linear.kind_proven => format!("{}, proved", view.look(index).word),
+        Some(Ok(_)) => format!("{}, numerical", view.look(index).word),
     }
 }
 

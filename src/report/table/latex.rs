@@ -35,7 +35,7 @@ pub fn latex(table: &Table<'_>, page: Page) -> String {
         }
     }
     let meanings = words::meanings(table);
-    parts.extend(meanings.iter().map(|(word, meaning)| format!("\\emph{{{word}}}: {meaning}")));
+    parts.extend(meanings.iter().map(|(word, meaning)| format!("\\emph{{{word}}}: {}", escaped(meaning, &page))));
     parts.push(words::CAUTION.to_owned());
     parts.join("\n\n") + "\n"
 }
@@ -87,7 +87,7 @@ fn grid(sheet: &Sheet, columns: &[usize], page: &Page) -> String {
     let units = line(&mut heads.iter().map(|head| escaped(&head.unit, page)));
     let has_units = heads.iter().any(|head| !head.unit.is_empty());
     let body = sheet.rows.iter().map(|row| {
-        line(&mut columns.iter().filter_map(|&column| row.get(column)).map(|cell| number_or_text(cell.text(), page)))
+        line(&mut columns.iter().filter_map(|&column| row.get(column)).map(|cell| words_and_numbers(cell.text(), page)))
     });
     let top = if has_units { titles + &units } else { titles };
     tabular(&heads.iter().map(letter).collect::<String>(), &top, &body.collect::<String>())
@@ -96,6 +96,10 @@ fn grid(sheet: &Sheet, columns: &[usize], page: &Page) -> String {
 fn tabular(columns: &str, heads: &str, body: &str) -> String {
     let heads = if heads.is_empty() { String::new() } else { format!("{heads}\\midrule\n") };
     format!("\\noindent\\begin{{tabular}}{{{columns}}}\n\\toprule\n{heads}{body}\\bottomrule\n\\end{{tabular}}")
+}
+
+fn words_and_numbers(text: &str, page: &Page) -> String {
+    text.split_whitespace().map(|word| number_or_text(word, page)).collect::<Vec<_>>().join(" ")
 }
 
 /// A number in mathematics, where its minus is one; anything else as text.

@@ -30,7 +30,7 @@ pub fn markdown(table: &Table<'_>, page: Page) -> String {
         }
     }
     let meanings = words::meanings(table);
-    parts.extend(meanings.iter().map(|(word, meaning)| format!("*{word}*: {meaning}")));
+    parts.extend(meanings.iter().map(|(word, meaning)| format!("*{word}*: {}", escaped(meaning, &page))));
     parts.push(words::CAUTION.to_owned());
     parts.join("\n\n") + "\n"
 }

@@ -7,7 +7,7 @@
 //! not by words, in every format; every format carries what is needed to make the table again, and the caution.
 //!
 //! `identity` names equilibria, `number` rounds, `words` and `scene` have what all formats say, `paths` says where paths
-//! go, `provenance` what the table is of, `layout` makes lines, `guide` explains the columns.
+//! go, `provenance` what the table is of, `layout` makes lines, `guide` explains the columns, `glossary` those shown.
 //!
 //! The JSON has the contract's keys in the contract's order, and some of its own after them:
 //!
@@ -21,6 +21,7 @@
 mod columns;
 mod csv;
 mod data;
+mod glossary;
 mod guide;
 mod identity;
 mod latex;

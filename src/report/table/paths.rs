@@ -9,7 +9,11 @@ use crate::model::SpeciesId;
 
 use super::columns::by_symbol;
 use super::number::human;
+use super::provenance::plain;
 use super::{Table, exact, optional};
+
+/// Species whose abundances are named in a sentence; more would bury it.
+const MOST_NAMED: usize = 8;
 
 /// What is needed to name where a path ends.
 #[derive(Clone, Copy, Debug)]
@@ -80,14 +84,21 @@ pub(super) fn from_now(place: Place<'_>, from: &FromNow) -> Value {
 /// Where today's stocks lead, in a sentence or two.
 pub(super) fn from_now_in_words(place: Place<'_>, from: &FromNow) -> String {
     let table = place.table;
-    let today: Vec<String> = table.model.now.iter().map(|now| amount(table, now.species.0, now.value)).collect();
-    let start = if today.is_empty() { "From today's stocks".to_owned() } else { format!("From {}", today.join(", ")) };
-    let time = &table.model.time_unit.value;
-    let when = from.time.map_or_else(String::new, |after| format!(", to within 10 % after {} {time}", human(after)));
+    let stock = |species: usize, x: f64| named(table, species, &plain(x));
+    let today: Vec<String> = table.model.now.iter().map(|now| stock(now.species.0, now.value)).collect();
+    let is_long = table.model.species.len() > MOST_NAMED;
+    let start = if today.is_empty() || is_long { "today's stocks".to_owned() } else { today.join(", ") };
+    let when = from.time.map_or_else(String::new, |after| when(place, &from.reaches, after));
     let lowest: Vec<String> = from.lowest.iter().enumerate().map(|(i, &x)| amount(table, i, x)).collect();
-    let lowest = if lowest.is_empty() { String::new() } else { format!("; lowest on the way {}", lowest.join(", ")) };
+    let lowest = match lowest.len() {
+        0 => String::new(),
+        _ if is_long => "; json has the lowest of each species on the way".to_owned(),
+        // What was broken off may yet fall lower.
+        _ if from.reaches == Destination::NotSettled => format!("; lowest until then {}", lowest.join(", ")),
+        _ => format!("; lowest on the way {}", lowest.join(", ")),
+    };
     let end = ends(place, &from.reaches);
-    format!("{start}, the path {end}{when}{lowest} (numerical).{}", shares_in_words(place, from))
+    format!("From {start}, the path {end}{when}{lowest} (numerical).{}", shares_in_words(place, from))
 }
 
 fn shares_in_words(place: Place<'_>, from: &FromNow) -> String {
@@ -117,6 +128,16 @@ fn ends(place: Place<'_>, to: &Destination) -> String {
     }
 }
 
+/// When a path has come near its end, after [`ends`].
+fn when(place: Place<'_>, to: &Destination, after: f64) -> String {
+    let unit = &place.table.model.time_unit.value;
+    match to {
+        Destination::Loss(_) => format!(", gone or below 10 % of the start after {} {unit}", human(after)),
+        _ if after == 0.0 => ", and is within 10 % of it from the start".to_owned(),
+        _ => format!(", to within 10 % after {} {unit}", human(after)),
+    }
+}
+
 /// A share in whole percent, and never all or nothing where it is neither.
 fn percent(share: f64) -> String {
     match share {
@@ -126,13 +147,26 @@ fn percent(share: f64) -> String {
     }
 }
 
+/// How an unstable state is left.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub(super) enum Leaving {
+    /// Winding around it or from side to side, so that all paths leave alike.
+    Winding,
+    /// To either of two sides, of which only the worse is told.
+    Sideways,
+}
+
 /// What an unstable state gives way to, in a sentence.
-pub(super) fn settles_in_words(place: Place<'_>, id: &str, to: &Destination) -> String {
+pub(super) fn settles_in_words(place: Place<'_>, id: &str, leaving: Leaving, to: &Destination) -> String {
+    let path = match leaving {
+        Leaving::Winding => "a path released beside it",
+        Leaving::Sideways => "of paths released on its two sides, the one with the poorer end",
+    };
     let end = match to {
         Destination::Cycle(cycle) => format!("settles on {}", cycle_in_words(place.table, cycle)),
         other => ends(place, other),
     };
-    format!("{id} is unstable: a path released beside it {end} (numerical).")
+    format!("{id} is unstable: {path} {end} (numerical).")
 }
 
 fn cycle_in_words(table: &Table<'_>, cycle: &Cycle) -> String {
@@ -146,7 +180,11 @@ fn cycle_in_words(table: &Table<'_>, cycle: &Cycle) -> String {
 }
 
 fn amount(table: &Table<'_>, species: usize, x: f64) -> String {
-    format!("{} {}{}", table.symbol(species).unwrap_or(""), human(x), unit(table, species))
+    named(table, species, &human(x))
+}
+
+fn named(table: &Table<'_>, species: usize, number: &str) -> String {
+    format!("{} {number}{}", table.symbol(species).unwrap_or(""), unit(table, species))
 }
 
 fn unit(table: &Table<'_>, species: usize) -> String {

@@ -1,6 +1,7 @@
 //! What is said of a scenario beside its equilibria, in words that every format shares.
 
 use crate::analysis::equilibria::Unresolved;
+use crate::analysis::linearise::Linearisation;
 use crate::diag::Diagnostic;
 use crate::diag::render::position;
 use crate::model::Model;
@@ -39,7 +40,9 @@ pub(super) fn undecided(table: &Table<'_>, one: &Unresolved) -> String {
             format!("{} from {} to {}", species.symbol, human_below(side.lo()), human_above(side.hi()))
         }
     });
-    let place = sides.collect::<Vec<_>>().join(", ");
+    let whole = table.bounds.iter().map(|bound| [bound.lower, bound.upper]);
+    let is_whole = one.region.iter().map(|side| [side.lo(), side.hi()]).eq(whole);
+    let place = if is_whole { "the whole search box".to_owned() } else { sides.collect::<Vec<_>>().join(", ") };
     let more = words::known(one, &table.model.species);
     format!("{}: {place}{more}", words::probably_in_words(one.probably))
 }
@@ -75,7 +78,12 @@ pub(super) fn sentences(
     let from_now = solved.assessment.from_now.iter().map(|from| paths::from_now_in_words(place, from));
     let settles = rows.iter().filter_map(|row| {
         let to = row.assessed()?.settles.as_ref()?;
-        Some(paths::settles_in_words(place, row.id(), to))
+        let winds = |linear: &Linearisation| {
+            linear.alternating || linear.spectrum.values.first().is_some_and(|value| value.im != 0.0)
+        };
+        let is_winding = row.linear().is_some_and(winds);
+        let leaving = if is_winding { paths::Leaving::Winding } else { paths::Leaving::Sideways };
+        Some(paths::settles_in_words(place, row.id(), leaving, to))
     });
     from_now.chain(settles).collect()
 }

@@ -17,6 +17,9 @@ const NARROWEST: usize = 30;
 /// Where the entries of the heading begin.
 const ENTRIES: usize = 12;
 
+/// Where the meanings of words begin.
+const MEANINGS: usize = 14;
+
 /// What the text is put on.
 #[derive(Clone, Copy, Debug)]
 pub struct Page {
@@ -136,6 +139,6 @@ pub fn failed(model: &Model, scene: &Scene, problems: &[Diagnostic], page: &Page
 fn legend(table: &Table<'_>, page: &Page) -> String {
     let used = words::meanings(table);
     let lines: String =
-        used.iter().map(|(word, meaning)| page.paragraph(&format!("{word}:"), meaning, ENTRIES)).collect();
+        used.iter().map(|(word, meaning)| page.paragraph(&format!("{word}:"), meaning, MEANINGS)).collect();
     if lines.is_empty() { lines } else { lines + "\n" }
 }

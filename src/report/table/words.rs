@@ -5,8 +5,9 @@ use crate::analysis::linearise::{Test, Unavailable, Verdict};
 use crate::model::Species;
 use crate::num::eigen::Unsolved;
 
-use super::Table;
+use super::columns::Shown;
 use super::number::human;
+use super::{Table, glossary};
 
 /// What every table ends with.
 pub(in crate::report) const CAUTION: &str = "These are local results about a model, no better than its equations and its \
@@ -30,14 +31,17 @@ pub(super) fn meanings(table: &Table<'_>) -> Vec<(&'static str, &'static str)> {
     let any_state = |proven| solved().any(|solved| solved.equilibria.list.iter().any(|e| e.proven == proven));
     let any_type = |proven| linear().any(|linear| linear.kind_proven == proven || linear.stable_proven == proven);
     let is_open = solved().any(|solved| !solved.equilibria.unresolved.is_empty());
-    let proved = if any_type(true) { PROVED_TYPE } else { PROVED };
+    let has_types = table.columns(&[Shown::Everywhere]).iter().any(|column| ["type", "stable"].contains(&column.id));
+    let follows_paths = solved().any(|solved| solved.assessment.from_now.is_some());
+    let proved = if any_type(true) && has_types { PROVED_TYPE } else { PROVED };
     let numerical = if linear().next().is_some() { NUMERICAL_MEASURES } else { NUMERICAL };
     let all = [
         (any_state(true) || any_type(true), proof(true), proved),
-        (any_state(false) || linear().next().is_some(), proof(false), numerical),
+        (any_state(false) || linear().next().is_some() || follows_paths, proof(false), numerical),
         (is_open, UNDECIDED, "a part of the search box that may hold equilibria or none."),
     ];
-    all.into_iter().filter_map(|(is_used, word, meaning)| is_used.then_some((word, meaning))).collect()
+    let words = all.into_iter().filter_map(|(is_used, word, meaning)| is_used.then_some((word, meaning)));
+    words.chain(glossary::used(table)).collect()
 }
 
 const NUMERICAL: &str = "computed, but nothing is proved about it.";
@@ -81,7 +85,9 @@ pub(super) fn known(open: &Unresolved, species: &[Species]) -> String {
     let points = open.witnesses.iter().map(state).collect::<Vec<_>>().join("; ");
     let points = if points.is_empty() { points } else { format!("points on it: {points}") };
     let mut known = String::new();
-    for part in [&open.text, &points].into_iter().filter(|part| !part.is_empty()) {
+    // A full stop follows from whoever shows this.
+    let text = open.text.trim_end_matches('.');
+    for part in [text, points.as_str()].into_iter().filter(|part| !part.is_empty()) {
         known.push_str("; ");
         known.push_str(part);
     }

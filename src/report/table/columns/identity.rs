@@ -39,26 +39,27 @@ pub(super) static COLUMNS: &[Column] = &[
         keys: &[key("present", Get::One(|row| json!(present(row))))],
         cells: Cells::Own {
             heads: |_| vec![Head::new("present", Align::Left)],
-            cells: |row, _| vec![Cell::new(present_in_words(&present(row), row.table.model.species.len()))],
+            cells: |row, _| vec![Cell::new(counted(&present(row), row.table.model.species.len()))],
         },
     },
     Column {
         id: "proven",
         unit: Unit::None,
-        help: "proved: exactly one equilibrium is within the error given; numerical: computed, nothing proved",
+        help: "proved: exactly one equilibrium is within the error given, for people the worst of radius; numerical: computed, \
+               nothing proved",
         shown: Shown::Everywhere,
         title: "state",
         keys: &[key("proven", Get::One(|row| row.equilibrium.proven.into()))],
         cells: Cells::Own {
-            heads: |_| vec![Head::new("state", Align::Left)],
-            cells: |row, _| vec![Cell::inked(words::proof(row.equilibrium.proven), Ink::of(row.equilibrium.proven))],
+            heads: |_| vec![Head { unit: "error".to_owned(), ..Head::new("state", Align::Left) }],
+            cells: |row, _| vec![sureness(row)],
         },
     },
     Column {
         id: "radius",
         unit: Unit::Said("no unit: relative; unit of the species for an abundance of 0"),
         help: "bound of the error of each abundance, where the state is proved",
-        shown: Shown::Everywhere,
+        shown: Shown::Files,
         title: "error",
         keys: &[key("radius", Get::Species(|row| Some(every(&row.equilibrium.radius()))))],
         cells: Cells::Own {
@@ -78,7 +79,7 @@ fn present<'t>(row: &Row<'t>) -> Vec<&'t str> {
     species.filter(|(i, _)| row.equilibrium.has(*i)).map(|(_, species)| species.symbol.as_str()).collect()
 }
 
-fn present_in_words(present: &[&str], all: usize) -> String {
+pub(super) fn counted(present: &[&str], all: usize) -> String {
     let listed = present.join(" ");
     match present.len() {
         0 => "none".to_owned(),
@@ -86,6 +87,17 @@ fn present_in_words(present: &[&str], all: usize) -> String {
         count if count == all => format!("all {all}"),
         count => format!("{count} of {all}"),
     }
+}
+
+/// What is proved of a state, with the error: apart, either would need the other to be understood.
+fn sureness(row: &Row<'_>) -> Cell {
+    let word = words::proof(row.equilibrium.proven);
+    let text = match worst(&row.equilibrium.radius(), row.equilibrium.proven).as_str() {
+        _ if !row.equilibrium.proven => word.to_owned(),
+        "0" => format!("{word}, exact"),
+        error => format!("{word}, {error}"),
+    };
+    Cell::inked(text, Ink::of(row.equilibrium.proven))
 }
 
 fn worst(radius: &[f64], proven: bool) -> String {
@@ -103,7 +115,7 @@ mod tests {
         for (count, all, text) in
             [(0, 3, "none"), (2, 3, "x0 x1"), (3, 3, "x0 x1 x2"), (12, 30, "12 of 30"), (30, 30, "all 30")]
         {
-            assert_eq!(present_in_words(&symbols(count), all), text);
+            assert_eq!(counted(&symbols(count), all), text);
         }
         assert_eq!(worst(&[0.0, 2.01e-16], true), "3e-16");
         assert_eq!(worst(&[0.0], false), "unknown");

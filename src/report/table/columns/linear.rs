@@ -59,8 +59,9 @@ pub(super) static COLUMNS: &[Column] = &[
     Column {
         id: "stable",
         unit: Unit::None,
-        help: "whether all eigenvalues attract, and whether that is proved; open where only the nonlinear terms decide",
-        shown: Shown::Everywhere,
+        help: "whether all eigenvalues attract, and whether that is proved; open where only the nonlinear terms decide; for \
+               people the type says so",
+        shown: Shown::Files,
         title: "stable",
         keys: &[
             key("stable", Get::One(|row| row.linear().map_or(Value::Null, |l| json!(l.stable)))),
@@ -141,6 +142,7 @@ fn kind(row: &Row<'_>, glyphs: Glyphs) -> Cell {
         (_, true) => (", proved", Ink::Proved),
         (_, false) => (", numerical", Ink::Numerical),
     };
+    let proof = format!("{proof}{}", apart(linear));
     Cell::inked(
         match glyphs {
             Glyphs::Unicode => format!("{}{winds} {}{proof}", look.glyph, look.word),
@@ -149,6 +151,16 @@ fn kind(row: &Row<'_>, glyphs: Glyphs) -> Cell {
         },
         ink,
     )
+}
+
+/// What is to be said of stability where it is proved and the type is not, or the other way round.
+fn apart(linear: &Linearisation) -> &'static str {
+    match (linear.kind_proven, linear.stable_proven, linear.stable) {
+        (false, true, Some(true)) => "; proved stable",
+        (false, true, Some(false)) => "; proved not stable",
+        (true, false, Some(_)) => "; stability numerical",
+        _ => "",
+    }
 }
 
 fn stable(linear: &Linearisation) -> Cell {

@@ -4,7 +4,9 @@ use serde_json::{Value, json};
 
 use crate::analysis::measures::Amplification;
 
-use super::super::exact;
+use super::super::layout::{Align, Cell, Head};
+use super::super::number::human;
+use super::super::{Table, exact};
 use super::path::{Get, keyed};
 use super::{Cells, Column, Shown, Unit, key, number};
 
@@ -64,8 +66,9 @@ pub(super) static COLUMNS: &[Column] = &[
     Column {
         id: "peak_amplification",
         unit: Unit::Said("factor: no unit; time: time unit"),
-        help: "how many times larger a small knock can become before it fades, at most, and when (Neubert & Caswell 1997)",
-        shown: Shown::Files,
+        help: "how many times larger a small knock can become before it fades, at most, and when (Neubert & Caswell 1997); \
+               in absolute abundances, so that it hangs on their units",
+        shown: Shown::Everywhere,
         title: "amplification",
         keys: &[key(
             "peak_amplification",
@@ -74,9 +77,27 @@ pub(super) static COLUMNS: &[Column] = &[
                 value: |row| peak(row.measures().and_then(|measures| measures.amplification)),
             },
         )],
-        cells: Cells::Rounded,
+        cells: Cells::Own {
+            heads: |table| surge_head(table, "surge"),
+            cells: |row, _| surge(row.measures().and_then(|measures| measures.amplification)),
+        },
     },
 ];
+
+/// The heading over [`surge`].
+pub(super) fn surge_head(table: &Table<'_>, title: &str) -> Vec<Head> {
+    let unit = format!("fold, {}", Unit::Time.of(table, None));
+    vec![Head { unit, ..Head::new(title, Align::Left) }]
+}
+
+/// How far a knock grows, and when, in one cell that no page can break; a word where it never does.
+pub(super) fn surge(found: Option<Amplification>) -> Vec<Cell> {
+    vec![Cell::new(match found {
+        None => String::new(),
+        Some(Amplification { time: 0.0, .. }) => "none".to_owned(),
+        Some(Amplification { factor, time }) => format!("{} at {}", human(factor), human(time)),
+    })]
+}
 
 /// An amplification as data.
 pub(super) fn peak(found: Option<Amplification>) -> Value {

@@ -4,6 +4,7 @@
 //! and LaTeX the cells, which are the same values rounded unless the column has cells of its own. To add a column, add it
 //! to the file of its group; the contract fixes the order of the keys, so that ours stand at the end, in [`own`].
 
+mod compact;
 mod identity;
 mod linear;
 mod measures;
@@ -15,8 +16,12 @@ use serde_json::Value;
 
 use super::layout::{Align, Cell, Head};
 use super::{Row, Table};
+pub(super) use compact::has_sums;
 use path::{Get, humane};
 pub(super) use path::{Path, by_symbol};
+
+/// Numbers of one column that people are shown in a row; a square of them grows faster than any page.
+const MOST_SHOWN: usize = 150;
 
 /// Every column, by group, in the order of JSON.
 pub static COLUMNS: [&[Column]; 5] =
@@ -73,6 +78,9 @@ pub enum Unit {
     /// Another, said in words.
     Said(&'static str),
 }
+
+/// In place of numbers that are too many for a page.
+const TOO_MANY: &str = "too many to be shown; csv and json have them";
 
 /// One key of an equilibrium's JSON.
 #[derive(Debug)]
@@ -137,6 +145,7 @@ impl Column {
     pub(super) fn heads(&self, table: &Table<'_>) -> Vec<Head> {
         match self.cells {
             Cells::Own { heads, .. } => heads(table),
+            Cells::Rounded if self.is_too_many(table) => vec![Head::new(self.title, Align::Left)],
             Cells::Rounded => self.paths(table).iter().map(|path| self.head(table, path)).collect(),
         }
     }
@@ -150,11 +159,22 @@ impl Column {
     pub(super) fn cells(&self, row: &Row<'_>, glyphs: Glyphs) -> Vec<Cell> {
         match self.cells {
             Cells::Own { cells, .. } => cells(row, glyphs),
+            Cells::Rounded if self.is_too_many(row.table) => vec![Cell::new(TOO_MANY)],
             Cells::Rounded => {
                 let value = self.keys.first().map_or(Value::Null, |key| key.get.value(row));
                 self.paths(row.table).iter().map(|path| Cell::new(humane(path.of(&value)))).collect()
             }
         }
+    }
+
+    /// Whether its numbers are those of pairs, and of more pairs than can be read.
+    fn is_too_many(&self, table: &Table<'_>) -> bool {
+        let species = table.model.species.len();
+        let pairs = match self.id {
+            "elasticities" => (species + 1).saturating_mul(table.model.parameters.len()),
+            _ => species.saturating_mul(species),
+        };
+        self.shown == Shown::Json && pairs > MOST_SHOWN
     }
 
     fn paths(&self, table: &Table<'_>) -> Vec<Path> {

@@ -6,7 +6,7 @@ use crate::analysis::measures::Group;
 
 use super::super::layout::{Align, Cell, Head, Ink};
 use super::super::{Row, Table, exact, optional};
-use super::measures::peak;
+use super::measures::{peak, surge, surge_head};
 use super::path::{Get, Path, keyed};
 use super::{Cells, Column, Shown, Unit, key, number};
 
@@ -44,7 +44,10 @@ pub(super) static COLUMNS: &[Column] = &[
                 value: |row| peak(row.measures().and_then(|measures| measures.amplification_present)),
             },
         )],
-        cells: Cells::Rounded,
+        cells: Cells::Own {
+            heads: |table| surge_head(table, "surge, present alone"),
+            cells: |row, _| surge(row.measures().and_then(|measures| measures.amplification_present)),
+        },
     },
     number(
         "invariability",

@@ -6,6 +6,7 @@ use crate::analysis::measures::{Elasticity, HarvestYield};
 
 use super::super::layout::{Align, Cell, Head};
 use super::super::{Row, Table, optional, paths};
+use super::compact;
 use super::path::{Get, Path, by_symbol, keyed};
 use super::{Cells, Column, Shown, Unit, key};
 
@@ -20,14 +21,14 @@ pub(super) static COLUMNS: &[Column] = &[
         id: "invasion",
         unit: Unit::PerTime,
         help: "growth when rare of each absent species that is a population of its own (Turelli 1978; Chesson 2000); \
-               where positive, it can come in",
-        shown: Shown::Files,
+               where positive, it can come in; for people, unless asked for, only who can",
+        shown: Shown::Everywhere,
         title: "growth when rare",
         keys: &[key(
             "invasion",
             Get::Species(|row| Some(row.measures()?.invasion.iter().map(|&(id, rate)| (id.0, rate)).collect())),
         )],
-        cells: Cells::Rounded,
+        cells: Cells::Own { heads: compact::invasion_heads, cells: compact::invasion },
     },
     Column {
         id: "settles",
@@ -44,11 +45,11 @@ pub(super) static COLUMNS: &[Column] = &[
     Column {
         id: "yield",
         unit: Unit::Yield,
-        help: "what each harvest takes or counts of each species",
+        help: "what each harvest takes or counts of each species; for people, unless asked for, summed where there are many",
         shown: Shown::Everywhere,
         title: "yield",
         keys: &[key("yield", Get::Other { paths: |table| taken(table, &Path::default()), value: yields })],
-        cells: Cells::Rounded,
+        cells: Cells::Own { heads: compact::yield_heads, cells: compact::yields },
     },
     Column {
         id: "value",
@@ -113,7 +114,7 @@ fn settling_paths(table: &Table<'_>) -> Vec<Path> {
 }
 
 /// A place for each harvest of any scenario shown and each species that it takes.
-fn taken(table: &Table<'_>, under: &Path) -> Vec<Path> {
+pub(super) fn taken(table: &Table<'_>, under: &Path) -> Vec<Path> {
     let mut all: Vec<Path> = Vec::new();
     for harvest in table.harvests() {
         for amount in &harvest.amounts {
@@ -138,7 +139,7 @@ fn priced(table: &Table<'_>) -> Vec<Path> {
     keyed(&names)
 }
 
-fn yields(row: &Row<'_>) -> Value {
+pub(super) fn yields(row: &Row<'_>) -> Value {
     let one = |harvest: &HarvestYield| {
         let amounts = harvest.amounts.iter().map(|&(id, amount)| (id.0, Some(amount)));
         (harvest.name.clone(), by_symbol(row.table, amounts))
