@@ -194,6 +194,41 @@ fn singular_faces_are_told_apart() {
     check_two([1.0, -1.0], [0.0, -0.5, 0.25, 0.0], wide, (&[[0.0, 0.0], [4.0, 2.0]], true, &[]));
 }
 
+/// Points with A x = b that are in the box, positive, and not all one.
+#[test]
+fn surfaces_of_equilibria_have_points() {
+    let check = |whole: &Whole, upper: f64, at_least: usize| {
+        let (community, n) = (whole.affine(), whole.growth.len());
+        let found = solve(&community, upper);
+        let mut shown = 0;
+        for open in found.unresolved.iter().filter(|open| open.probably == Probably::Continuum) {
+            assert!(open.witnesses.len() <= 3 && open.dimension.is_some_and(|dimension| dimension > 0));
+            for (k, state) in open.witnesses.iter().enumerate() {
+                shown += 1;
+                assert!(open.region.iter().zip(state).all(|(side, &x)| side.contains(x)), "{open:?}");
+                for i in (0..n).filter(|&i| open.region[i] != Interval::ZERO) {
+                    let terms: Vec<f64> = (0..n).map(|j| community.matrix[i * n + j].mid() * state[j]).collect();
+                    let growth = community.growth[i].mid();
+                    let size = terms.iter().fold(growth.abs(), |size, term| size.max(term.abs()));
+                    assert!(state[i] > 0.0 && (growth + terms.iter().sum::<f64>()).abs() <= 1e-9 * size, "{open:?}");
+                }
+                assert!(open.witnesses[..k].iter().all(|other| other != state), "{open:?}");
+            }
+        }
+        assert!(shown >= at_least, "{shown}: {:?}", found.unresolved);
+    };
+    // Four that limit each other alike: a line for each of 6 pairs, a surface for each of 4 triples, and one of all.
+    let alike = |n: usize| Whole { growth: vec![1; n], matrix: vec![-1; n * n] };
+    check(&alike(2), 100.0, 3);
+    check(&alike(4), 100.0, 33);
+    // The same in a box in which it takes at least three of them to reach 1.
+    check(&alike(4), 0.4, 15);
+    let mut source = Source::new(4);
+    for seed in 0..40 {
+        check(&Whole::random(&mut source, 2 + seed % 5, [-2, 1], 3), 1e3, 0);
+    }
+}
+
 #[test]
 fn the_box_is_kept() {
     let (growth, matrix) = ([1.0, -1.0], [0.0, -0.5, 0.25, 0.0]);

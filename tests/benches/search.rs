@@ -9,14 +9,19 @@ mod common;
 
 use std::collections::BTreeMap;
 use std::hint::black_box;
+use std::path::Path;
 use std::time::Instant;
 
 use common::cases;
 use common::families::{Family, webs};
 use common::solve::{Method, meet, solve_within};
 use common::text::Read;
+use common::whole::Whole;
 use common::workers::Two;
 use restpoint::analysis::equilibria::{Budget, Equilibria, OneByOne, Workers};
+use restpoint::model::load::load;
+use restpoint::model::system::System;
+use restpoint::shell::files::read_model;
 
 const BUDGET: Budget<'_> = Budget { boxes: 50_000, stop: &|| false, workers: &OneByOne, observer: None };
 
@@ -24,7 +29,49 @@ fn main() {
     by_species();
     named_webs();
     random_webs();
+    overruns();
     second_thread();
+}
+
+/// Budgets of time, in milliseconds.
+const DEADLINES: [f64; 5] = [1.0, 5.0, 20.0, 80.0, 250.0];
+
+/// How much longer than they may searches take that are told to stop: the largest overrun over all budgets.
+fn overruns() {
+    println!("\nlargest overrun of a budget of time, ms (to reach 50)");
+    let meadow = Path::new(env!("CARGO_MANIFEST_DIR")).join("scenarios/ferrow-meadow.yaml");
+    let file = read_model(&meadow).unwrap_or_else(|wrong| panic!("{wrong:?}"));
+    let (model, _, found) = load(&file.name, &file.bytes, &file.tables);
+    let model = model.unwrap_or_else(|| panic!("{found:?}"));
+    let system = System::new(&model, &[]).unwrap_or_else(|found| panic!("{found:?}"));
+    let plans = system.plans.len();
+    let mut meadow = Read { model, system };
+    print_overrun("ferrow-meadow", (0..plans).map(|plan| overrun(&mut meadow, plan)));
+    for n in [9, 12, 16, 20, 25, 30] {
+        let seeds = 1..=3;
+        print_overrun(&format!("webs of {n}"), seeds.map(|seed| overrun(&mut webs::web(n, seed).text.read(), 0)));
+    }
+    for n in [60, 120, 250, 500] {
+        let community = Whole::random(&mut common::Source::new(n as u64), n, [-2, 0], 40);
+        print_overrun(&format!("linear blocks of {n}"), [overrun(&mut community.text().read(), 0)].into_iter());
+    }
+}
+
+fn print_overrun(name: &str, overruns: impl Iterator<Item = f64>) {
+    println!("  {name:<22} {:>8.1}", overruns.fold(0.0, f64::max));
+}
+
+/// The largest over all deadlines; a search that ends before its deadline has none.
+fn overrun(read: &mut Read, plan: usize) -> f64 {
+    let fresh = read.system.graph.clone();
+    let late = |deadline: f64| {
+        read.system.graph = fresh.clone();
+        let start = Instant::now();
+        let passed = || start.elapsed().as_secs_f64() * 1e3;
+        black_box(solve_within(read, plan, Method::Chosen, &Budget { stop: &|| passed() > deadline, ..BUDGET }));
+        passed() - deadline
+    };
+    DEADLINES.map(late).into_iter().fold(0.0, f64::max)
 }
 
 /// The best of some runs in milliseconds, and what was found.

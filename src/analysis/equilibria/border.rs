@@ -1,6 +1,8 @@
 //! Roots on the border of the orthant: zeros shown to be exactly zero, the same point seen on two faces, and points where
 //! the rates have no derivative.
 
+use std::collections::BTreeMap;
+
 use super::corner;
 use super::faces::Face;
 use super::newton::{Equations, Proved};
@@ -107,17 +109,21 @@ fn is(zero: AtZero) -> Option<NodeId> {
     }
 }
 
-/// Drops a point that was found on two faces: the same species are present, and the enclosures meet.
+/// Drops a point that was found on two faces: the same species are present, and the enclosures meet. Each is held only
+/// against those of its own community: of thousands of communities few have more than a handful.
 pub(super) fn merge(candidates: &mut Vec<Candidate>) {
     let mut kept: Vec<Candidate> = Vec::new();
+    let mut alike: BTreeMap<Vec<bool>, Vec<usize>> = BTreeMap::new();
     for candidate in candidates.drain(..) {
         let here = &candidate.equilibrium;
-        let same = |other: &Candidate| {
-            let there = &other.equilibrium;
-            (0..here.state.len())
-                .all(|i| here.has(i) == there.has(i) && !here.enclosure[i].intersect(there.enclosure[i]).is_empty())
+        let alike = alike.entry((0..here.state.len()).map(|i| here.has(i)).collect()).or_default();
+        let meets = |(a, b): (&Interval, &Interval)| !a.intersect(*b).is_empty();
+        let same = |&other: &usize| {
+            let there: &Equilibrium = &kept[other].equilibrium;
+            here.enclosure.iter().zip(&there.enclosure).all(meets)
         };
-        if !kept.iter().any(same) {
+        if !alike.iter().any(same) {
+            alike.push(kept.len());
             kept.push(candidate);
         }
     }
@@ -135,8 +141,11 @@ pub(super) fn accept(
 ) -> Option<Settled> {
     candidate.equilibrium.derivative = derivative(rates, problem.values, &candidate.equilibrium, stop)?;
     let is_plain = candidate.equilibrium.derivative != Derivative::Missing;
-    if is_plain || corner::is_limit(graph, problem, &candidate.equilibrium) {
+    if is_plain || corner::is_limit(graph, problem, &candidate.equilibrium, stop) {
         return Some(Settled::Root(candidate));
+    }
+    if stop() {
+        return None;
     }
     let text = "the rates vanish along the borders here, but have no value, and it is not proved that they go to 0 from \
                 every direction";

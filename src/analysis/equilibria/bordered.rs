@@ -36,14 +36,12 @@ pub(super) struct Bordered<'e, 't> {
     tube: Vec<Interval>,
 }
 
-/// How the curve of solutions runs over the whole tube.
+/// How the curve of solutions runs over a region.
 pub(super) struct Course {
     /// x'
     pub(super) direction: Vec<Interval>,
-    /// μ'
-    pub(super) slope: Interval,
-    /// μ''
-    pub(super) bend: Interval,
+    /// Taylor coefficients of μ, from the first: μ', μ''/2, μ‴/6.
+    pub(super) mu: [Interval; 3],
 }
 
 impl<'e, 't> Bordered<'e, 't> {
@@ -95,24 +93,39 @@ impl<'e, 't> Bordered<'e, 't> {
         image.is_some_and(|image| image.iter().zip(&tube).all(|(image, side)| image.interior_of(*side)))
     }
 
-    /// Enclosures of the curve's derivatives over the tube.
+    /// How the curve runs over the tube.
     pub(super) fn course(&mut self) -> Option<Course> {
+        let tube = self.tube[..self.equations.n].to_vec();
+        self.course_over(&tube)
+    }
+
+    /// Taylor coefficients of x and μ along the curve, wherever on it in a region: with all lower ones known, F's next one
+    /// is J x_k plus what the lower give, so that each takes one more linear system with the same matrix.
+    fn course_over(&mut self, region: &[Interval]) -> Option<Course> {
         let n = self.equations.n;
-        let over = self.equations.linear(&self.tube[..n]);
+        let over = self.equations.linear(region);
         let bordered = matrix(&over.slopes, &points(&self.u), &points(&self.v), Interval::ZERO);
-        let mut first = self.solve(&bordered, &unit(n))?;
-        let slope = first.pop()?;
-        let line = self.tube.iter().zip(&first).map(|(x, direction)| Jet::line(*x, *direction));
-        let line: Vec<Jet<Interval>> = line.collect();
+        let mut direction = self.solve(&bordered, &unit(n))?;
+        let mut mu = [direction.pop()?, Interval::ENTIRE, Interval::ENTIRE];
+        let line = region.iter().zip(&direction).map(|(x, direction)| Jet::line(*x, *direction));
+        let mut line: Vec<Jet<Interval>> = line.collect();
         let mut run = self.tape.start(&self.parameters);
-        if !run.at(&line).defined {
-            return None;
+        for order in 2..=3 {
+            let domain = run.at(&line);
+            if !domain.defined {
+                return None;
+            }
+            // Beside a kink the slopes hold those of either branch; a second derivative there is none.
+            if !domain.smooth {
+                break;
+            }
+            let mut right: Vec<Interval> = (0..n).map(|i| -run.output(i).0[order]).collect();
+            right.push(Interval::ZERO);
+            let Some(mut next) = self.solve(&bordered, &right) else { break };
+            mu[order - 1] = next.pop()?;
+            line.iter_mut().zip(&next).for_each(|(x, next)| x.0[order] = *next);
         }
-        // F's second derivative along x' is twice the second Taylor coefficient.
-        let mut right: Vec<Interval> = (0..n).map(|i| run.output(i).0[2] * Interval::point(-2.0)).collect();
-        right.push(Interval::ZERO);
-        let bend = self.solve(&bordered, &right)?.pop()?;
-        Some(Course { direction: first, slope, bend })
+        Some(Course { direction, mu })
     }
 
     /// The solution at one t: tight enclosures of x and of μ.
@@ -133,17 +146,17 @@ impl<'e, 't> Bordered<'e, 't> {
         self.enclose(&x, mu, t)
     }
 
-    /// μ' at one t.
-    pub(super) fn slope_at(&mut self, t: f64) -> Option<Interval> {
-        let (x, _) = self.at(t)?;
+    /// Taylor coefficients of μ around one t, from μ itself.
+    pub(super) fn taylor_at(&mut self, t: f64) -> Option<[Interval; 4]> {
+        let (x, value) = self.at(t)?;
         let over = self.equations.linear(&x);
         let centre: Vec<f64> = over.slopes.iter().map(|slope| slope.mid()).collect();
         let here = inverse(&matrix(&centre, &self.u, &self.v, 0.0), self.equations.n + 1)?;
-        let bordered = matrix(&over.slopes, &points(&self.u), &points(&self.v), Interval::ZERO);
         let at_centre = std::mem::replace(&mut self.inverse, here);
-        let solution = self.solve(&bordered, &unit(self.equations.n));
+        let course = self.course_over(&x);
         self.inverse = at_centre;
-        solution?.pop()
+        let [slope, bend, twist] = course?.mu;
+        Some([value, slope, bend, twist])
     }
 
     fn enclose(&mut self, x: &[f64], mu: f64, t: f64) -> Option<(Region, Interval)> {

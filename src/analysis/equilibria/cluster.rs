@@ -1,10 +1,11 @@
 //! What a heap of open boxes around a nearly singular point holds: nothing, one root, two, or what cannot be told.
 //!
 //! The roots in the heap are the zeros of μ(t) of the [bordered](super::bordered) equations. Where μ' has one sign there is
-//! at most one, where μ'' has one sign at most two; the signs of μ at the ends and at its turning point decide how many.
+//! at most one, where μ'' has one sign at most two, where μ‴ has at most three; the signs of μ at the ends and at its
+//! turning point decide how many. What stays undecided lies near where the derivative before that is 0, by Taylor's formula.
 
 use super::bordered::{Bordered, Course};
-use super::newton::{Equations, Proved};
+use super::newton::{Equations, Proved, Region};
 use crate::expr::tape::Tape;
 use crate::num::interval::Interval;
 
@@ -14,10 +15,21 @@ pub(super) enum Heap {
     Empty,
     /// These roots, and no others.
     Roots(Vec<Proved>),
-    /// None, one double root or two.
-    DoubleOrTwo,
+    /// Roots too near each other to be told apart, if they are roots.
+    Close(Close),
     /// Nothing could be shown.
     Undecided,
+}
+
+/// Roots that cannot be told apart: they count with their multiplicity.
+#[derive(Clone, Debug, PartialEq)]
+pub(super) struct Close {
+    /// Holds all of them.
+    pub(super) within: Region,
+    /// So many at least, 0 or 1.
+    pub(super) least: usize,
+    /// So many at most, 2 or 3.
+    pub(super) most: usize,
 }
 
 /// How far the tube reaches beyond the heap, in its own size; one after the other is tried.
@@ -25,21 +37,32 @@ const REACHES: [f64; 3] = [4.0, 16.0, 128.0];
 /// Halvings of the interval of t on the way to the turning point and to each root.
 const HALVINGS: usize = 60;
 
+/// Steps towards where a derivative of μ is 0.
+const CENTRINGS: usize = 4;
+
 /// Decides what a heap of open boxes, given by its hull, holds.
 pub(super) fn decide<'t>(equations: &mut Equations<'t>, tape: &'t Tape, parameters: &[f64], hull: &[Interval]) -> Heap {
-    for reach in REACHES {
-        let Some(mut bordered) = Bordered::around(equations, tape, parameters, hull, reach) else { continue };
-        // Wider than the heap, so that a root at its end lies inside.
-        let heap = bordered.along(hull);
-        let t = heap + Interval::new(-heap.width(), heap.width());
-        if !bordered.is_regular(t) {
-            continue;
-        }
-        if let Some(course) = bordered.course() {
-            return Count { bordered, course }.decide(t);
-        }
+    let decided = |reach: f64| decide_within(equations, tape, parameters, hull, reach);
+    REACHES.into_iter().find_map(decided).unwrap_or(Heap::Undecided)
+}
+
+/// The same with a tube of one reach; `None` where the bordered equations are not regular in it.
+pub(super) fn decide_within<'t>(
+    equations: &mut Equations<'t>,
+    tape: &'t Tape,
+    parameters: &[f64],
+    hull: &[Interval],
+    reach: f64,
+) -> Option<Heap> {
+    let mut bordered = Bordered::around(equations, tape, parameters, hull, reach)?;
+    // Wider than the heap, so that a root at its end lies inside.
+    let heap = bordered.along(hull);
+    let t = heap + Interval::new(-heap.width(), heap.width());
+    if !bordered.is_regular(t) {
+        return None;
     }
-    Heap::Undecided
+    let course = bordered.course()?;
+    Some(Count { bordered, course }.decide(t))
 }
 
 struct Count<'e, 't> {
@@ -50,49 +73,87 @@ struct Count<'e, 't> {
 impl Count<'_, '_> {
     fn decide(mut self, t: Interval) -> Heap {
         let ends = [t.lo(), t.hi()].map(|end| self.sign_at(end));
-        if !self.course.slope.contains_zero() {
-            return match ends {
-                [Some(low), Some(high)] if low == high => Heap::Empty,
-                [Some(low), Some(_)] => roots([self.root(t.lo(), low, t.hi(), t)]),
-                _ => Heap::Undecided,
-            };
+        let [slope, bend, twist] = self.course.mu.map(|derivative| !derivative.contains_zero());
+        match ends {
+            [Some(low), Some(high)] if slope && low == high => Heap::Empty,
+            [Some(low), Some(_)] if slope => one(self.root(t.lo(), low, t.hi(), t)).unwrap_or(Heap::Undecided),
+            _ if slope => Heap::Undecided,
+            _ if bend => self.turning(t, ends).unwrap_or_else(|| self.close(t, 2)),
+            _ if twist => self.close(t, 3),
+            _ => Heap::Undecided,
         }
-        if self.course.bend.contains_zero() {
-            return Heap::Undecided;
-        }
-        self.turning(t, ends)
     }
 
-    /// μ turns at most once: it is convex, or concave.
-    fn turning(&mut self, t: Interval, ends: [Option<bool>; 2]) -> Heap {
-        let outward = self.course.bend.lo() > 0.0;
+    /// At most `most` roots, since that derivative of μ has one sign: where they are, as narrowly as Taylor's formula says.
+    fn close(&mut self, t: Interval, most: usize) -> Heap {
+        let near = self.narrowed(t, most);
+        let Some((x, _)) = self.bordered.at(near.mid()) else { return Heap::Undecided };
+        let run = near - Interval::point(near.mid());
+        let within = x.iter().zip(&self.course.direction).map(|(x, direction)| *x + *direction * run).collect();
+        // Of an odd number, counted with multiplicity, one is real; signs that differ prove it.
+        let crosses = match [near.lo(), near.hi()].map(|end| self.sign_at(end)) {
+            [Some(low), Some(high)] => low != high,
+            _ => false,
+        };
+        Heap::Close(Close { within, least: usize::from(crosses), most })
+    }
+
+    /// Holds every t with μ = 0: around any centre c₀ + c₁ h + … + c_k h^k = 0 with c_k from the whole course, and so
+    /// |h| ≤ 2 max |c_{k−j} / c_k|^(1/j) (Fujiwara 1916, from memory). Sharpest where c_{k−1} = 0.
+    fn narrowed(&mut self, t: Interval, k: usize) -> Interval {
+        let leading = self.course.mu[k - 1].mig();
+        let (mut near, mut centre) = (t, t.mid());
+        for _ in 0..CENTRINGS {
+            let Some(c) = self.bordered.taylor_at(centre) else { break };
+            // The powers are rounded; the margin covers that.
+            let reach =
+                (1..=k).map(|j| (c[k - j].mag() / leading).powf(1.0 / j as f64)).fold(0.0, f64::max) * 2.000_001;
+            if !reach.is_finite() {
+                break;
+            }
+            let around = near.intersect(Interval::point(centre) + Interval::new(-reach, reach));
+            // Empty would say that there is no root; that is left to the signs.
+            if around.is_empty() {
+                break;
+            }
+            near = around;
+            centre = (centre - c[k - 1].mid() / (k as f64 * c[k].mid())).clamp(near.lo(), near.hi());
+            if !centre.is_finite() {
+                break;
+            }
+        }
+        near
+    }
+
+    /// μ turns at most once: it is convex, or concave. `None` where signs do not tell.
+    fn turning(&mut self, t: Interval, ends: [Option<bool>; 2]) -> Option<Heap> {
+        let outward = self.course.mu[1].lo() > 0.0;
         match ends {
             [Some(low), Some(high)] if low != high => {
                 let (start, end) = if low == outward { (t.lo(), t.hi()) } else { (t.hi(), t.lo()) };
-                roots([self.root(start, outward, end, t)])
+                one(self.root(start, outward, end, t))
             }
             // Both ends lie on the side that the curve bends towards: between them it stays there.
-            [Some(low), Some(_)] if low != outward => Heap::Empty,
+            [Some(low), Some(_)] if low != outward => Some(Heap::Empty),
             [Some(_), Some(_)] => self.both_outward(t, outward),
-            _ => Heap::DoubleOrTwo,
+            _ => None,
         }
     }
 
     /// Both ends lie where the curve opens to: it may dip through 0 twice, once, or not at all.
-    fn both_outward(&mut self, t: Interval, outward: bool) -> Heap {
+    fn both_outward(&mut self, t: Interval, outward: bool) -> Option<Heap> {
         let turn = self.turning_point(t);
-        let (Some((_, value)), Some(slope)) = (self.bordered.at(turn), self.bordered.slope_at(turn)) else {
-            return Heap::DoubleOrTwo;
-        };
+        let [value, slope, ..] = self.bordered.taylor_at(turn)?;
         if sign(value) == Some(!outward) {
             let sides = [Interval::new(t.lo(), turn), Interval::new(turn, t.hi())];
-            return roots([self.root(t.lo(), outward, turn, sides[0]), self.root(t.hi(), outward, turn, sides[1])]);
+            let first = self.root(t.lo(), outward, turn, sides[0])?;
+            return Some(Heap::Roots(vec![first, self.root(t.hi(), outward, turn, sides[1])?]));
         }
         // μ(t) ≥ μ(t*) − μ'(t*)²/(2 min |μ''|) for a convex μ, the same upside down for a concave one.
-        let least = Interval::point(2.0 * self.course.bend.mig());
+        let least = Interval::point(4.0 * self.course.mu[1].mig());
         let dip = slope.square().div(least, &mut true);
         let deepest = if outward { value - dip } else { value + dip };
-        if sign(deepest) == Some(outward) { Heap::Empty } else { Heap::DoubleOrTwo }
+        (sign(deepest) == Some(outward)).then_some(Heap::Empty)
     }
 
     fn sign_at(&mut self, t: f64) -> Option<bool> {
@@ -102,11 +163,11 @@ impl Count<'_, '_> {
     /// Where μ' is nearest to 0, approximately.
     fn turning_point(&mut self, t: Interval) -> f64 {
         let (mut low, mut high) = (t.lo(), t.hi());
-        let rising = |slope: Option<Interval>| slope.map(|slope| slope.mid() > 0.0);
-        let start = rising(self.bordered.slope_at(low));
+        let rising = |taylor: Option<[Interval; 4]>| taylor.map(|[_, slope, ..]| slope.mid() > 0.0);
+        let start = rising(self.bordered.taylor_at(low));
         for _ in 0..HALVINGS {
             let middle = low + (high - low) / 2.0;
-            match rising(self.bordered.slope_at(middle)) {
+            match rising(self.bordered.taylor_at(middle)) {
                 None => break,
                 found if found == start => low = middle,
                 _ => high = middle,
@@ -137,9 +198,8 @@ impl Count<'_, '_> {
     }
 }
 
-fn roots<const N: usize>(found: [Option<Proved>; N]) -> Heap {
-    let found: Option<Vec<Proved>> = found.into_iter().collect();
-    found.map_or(Heap::DoubleOrTwo, Heap::Roots)
+fn one(root: Option<Proved>) -> Option<Heap> {
+    root.map(|root| Heap::Roots(vec![root]))
 }
 
 /// Whether an enclosure is proved above or below 0.

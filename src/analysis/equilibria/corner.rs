@@ -16,8 +16,14 @@ const NEARBY: f64 = 1e-6;
 /// Terms looked at for one row.
 const MOST_TERMS: usize = 500;
 
-/// Whether every rate is proved to have one limit at an equilibrium at which some are absent.
-pub(super) fn is_limit(graph: &mut Graph, problem: &Problem<'_>, equilibrium: &Equilibrium) -> bool {
+/// Whether every rate is proved to have one limit at an equilibrium at which some are absent. `stop` is asked before each
+/// walk through the graph, and nothing is claimed once it said so.
+pub(super) fn is_limit(
+    graph: &mut Graph,
+    problem: &Problem<'_>,
+    equilibrium: &Equilibrium,
+    stop: &dyn Fn() -> bool,
+) -> bool {
     let n = problem.rows.len();
     let absent = (0..n).filter(|&i| !equilibrium.has(i)).collect();
     let nearby = |i: usize| {
@@ -28,7 +34,7 @@ pub(super) fn is_limit(graph: &mut Graph, problem: &Problem<'_>, equilibrium: &E
     };
     let around = (0..n).map(nearby).collect();
     let values = problem.values.iter().map(|&value| Interval::point(value)).collect();
-    let mut corner = Corner { graph, values, at: &equilibrium.enclosure, around, absent };
+    let mut corner = Corner { graph, values, at: &equilibrium.enclosure, around, absent, stop };
     problem.rows.iter().all(|&row| corner.has_limit(row))
 }
 
@@ -40,6 +46,7 @@ struct Corner<'c> {
     /// All states near it.
     around: Vec<Interval>,
     absent: Vec<usize>,
+    stop: &'c dyn Fn() -> bool,
 }
 
 impl Corner<'_> {
@@ -47,6 +54,9 @@ impl Corner<'_> {
         let mut terms = vec![row];
         for _ in 0..MOST_TERMS {
             let Some(term) = terms.pop() else { return true };
+            if (self.stop)() {
+                return false;
+            }
             if self.has_limit_by_itself(term) {
                 continue;
             }
@@ -70,6 +80,9 @@ impl Corner<'_> {
             return true;
         }
         for k in 0..self.absent.len() {
+            if (self.stop)() {
+                return false;
+            }
             let quotient = self.graph.divide(term, self.absent[k]).quotient;
             if quotient.is_some_and(|quotient| self.stays_bounded(quotient)) {
                 return true;
@@ -126,7 +139,7 @@ mod tests {
         let enclosure = vec![Interval::ZERO; 2];
         let nobody = Equilibrium { state: vec![0.0; 2], enclosure, proven: true, derivative: Derivative::Missing };
         let problem = Problem { rows: &rows, values: &[], sides: &[[0.0, 10.0]; 2] };
-        assert_eq!(is_limit(&mut graph, &problem, &nobody), expected, "{:?}", graph.operation(rows[0]));
+        assert_eq!(is_limit(&mut graph, &problem, &nobody, &|| false), expected, "{:?}", graph.operation(rows[0]));
     }
 
     #[test]

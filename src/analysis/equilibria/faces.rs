@@ -59,11 +59,11 @@ impl Faces {
         Self { stack: vec![root], reaches_zero, vanishes }
     }
 
-    /// The next face; `None` when there are no more.
-    pub(super) fn next(&mut self, graph: &mut Graph) -> Option<Face> {
+    /// The next face; `None` when there are no more, or when `stop` said so, and then the walk is not done.
+    pub(super) fn next(&mut self, graph: &mut Graph, stop: &dyn Fn() -> bool) -> Option<Face> {
         while let Some(part) = self.stack.pop() {
             match self.branch(graph, &part) {
-                Some(i) => self.split(graph, part, i),
+                Some(i) => self.split(graph, part, i, stop)?,
                 None => {
                     if let Some(face) = leaf(&part) {
                         return Some(face);
@@ -74,20 +74,25 @@ impl Faces {
         None
     }
 
+    /// Whether every face was seen.
+    pub(super) fn is_done(&self) -> bool {
+        self.stack.is_empty()
+    }
+
     /// The species that can be absent while all others are present.
     pub(super) fn free(&self) -> Vec<usize> {
         (0..self.vanishes.len()).filter(|&i| self.vanishes[i] && self.reaches_zero[i]).collect()
     }
 
     /// The face on which, of the species that can be absent, just those are present that are wanted and may be; of a walk
-    /// that has not begun.
-    pub(super) fn leaf(&self, graph: &mut Graph, wanted: &[bool]) -> Option<Face> {
+    /// that has not begun. `None` where there is none, or `stop` said so.
+    pub(super) fn leaf(&self, graph: &mut Graph, wanted: &[bool], stop: &dyn Fn() -> bool) -> Option<Face> {
         let mut part = self.stack.first()?.clone();
         while let Some(i) = self.branch(graph, &part) {
             if part.rows[i].is_some() && (wanted[i] || !self.reaches_zero[i]) {
                 part.decisions[i] = Decision::Present;
             } else if self.reaches_zero[i] {
-                part = without(graph, part, i);
+                part = without(graph, part, i, stop)?;
             } else {
                 return None;
             }
@@ -96,14 +101,18 @@ impl Faces {
     }
 
     /// Divides the walk into at least `wanted` walks, if there are so many faces; together, and in this order, they see
-    /// every face.
-    pub(super) fn divide(mut self, graph: &mut Graph, wanted: usize) -> Vec<Self> {
+    /// every face. Once `stop` says so it is not divided further.
+    pub(super) fn divide(mut self, graph: &mut Graph, wanted: usize, stop: &dyn Fn() -> bool) -> Vec<Self> {
         let mut settled = Vec::new();
         while self.stack.len() + settled.len() < wanted {
             // The part with most left open comes first, so that the walks are of like size.
             let part = self.stack.remove(0);
             match self.branch(graph, &part) {
-                Some(i) => self.split(graph, part, i),
+                Some(i) => {
+                    if self.split(graph, part, i, stop).is_none() {
+                        break;
+                    }
+                }
                 None => settled.push(part),
             }
             if self.stack.is_empty() {
@@ -118,15 +127,18 @@ impl Faces {
     }
 
     /// Puts both parts on the stack: species `i` present, where its rate has a value, and absent, where the box allows.
-    fn split(&mut self, graph: &mut Graph, part: Part, i: usize) {
+    /// `None` where it was stopped; then the part is there as it was.
+    fn split(&mut self, graph: &mut Graph, part: Part, i: usize, stop: &dyn Fn() -> bool) -> Option<()> {
+        let absent = if self.reaches_zero[i] { Some(without(graph, part.clone(), i, stop)) } else { None };
+        if matches!(absent, Some(None)) {
+            self.stack.push(part);
+            return None;
+        }
         if part.rows[i].is_some() {
-            let mut present = part.clone();
-            present.decisions[i] = Decision::Present;
-            self.stack.push(present);
+            self.stack.push(Part { decisions: with(&part.decisions, i, Decision::Present), ..part });
         }
-        if self.reaches_zero[i] {
-            self.stack.push(without(graph, part, i));
-        }
+        self.stack.extend(absent.flatten());
+        Some(())
     }
 
     /// An open species that can be absent here: its rate vanishes with it, or has no value unless it is absent.
@@ -142,8 +154,18 @@ impl Faces {
     }
 }
 
-/// The part where species `i` is absent: every other rate as it is there.
-fn without(graph: &mut Graph, mut part: Part, i: usize) -> Part {
+fn with(decisions: &[Decision], i: usize, decision: Decision) -> Vec<Decision> {
+    let mut decisions = decisions.to_vec();
+    decisions[i] = decision;
+    decisions
+}
+
+/// The part where species `i` is absent: every other rate as it is there. `stop` is asked before each walk through the
+/// graph; `None` where it said so.
+fn without(graph: &mut Graph, mut part: Part, i: usize, stop: &dyn Fn() -> bool) -> Option<Part> {
+    if stop() {
+        return None;
+    }
     part.decisions[i] = Decision::Absent;
     part.rows[i] = None;
     part.quotients[i] = None;
@@ -161,10 +183,13 @@ fn without(graph: &mut Graph, mut part: Part, i: usize) -> Part {
     for j in 0..part.rows.len() {
         let undivided = part.rows[j].filter(|_| part.quotients[j].is_none() && part.decisions[j] != Decision::Absent);
         if let Some(row) = undivided {
+            if stop() {
+                return None;
+            }
             part.quotients[j] = graph.divide(row, j).quotient;
         }
     }
-    part
+    Some(part)
 }
 
 /// The face of a part in which nothing is left to branch on; `None` where a rate of one present has no value.
@@ -180,4 +205,65 @@ fn leaf(part: &Part) -> Option<Face> {
         face.divided.push(quotient.is_some());
     }
     Some(face)
+}
+
+#[cfg(test)]
+mod tests {
+    use std::cell::Cell;
+
+    use super::*;
+
+    /// x_i (1 − Σ x_j), shared parts written once for each row.
+    fn crowd(n: usize) -> (Graph, Vec<NodeId>) {
+        let mut graph = Graph::new(n, Vec::new());
+        let row = |graph: &mut Graph, i: usize| {
+            let mut rest = graph.constant(1.0 + i as f64);
+            for j in 0..n {
+                let x = graph.state(j);
+                rest = graph.sub(rest, x);
+            }
+            let x = graph.state(i);
+            graph.mul(x, rest)
+        };
+        let rows = (0..n).map(|i| row(&mut graph, i)).collect();
+        (graph, rows)
+    }
+
+    /// Each walk through the graph on the way to a face is one that `stop` was asked before: stopped at the k-th, it has
+    /// made k of the n steps, and what it has added to the graph by then grows with k.
+    #[test]
+    fn the_way_to_a_face_can_be_stopped_between_any_two_steps() {
+        let n = 6;
+        let mut grown = Vec::new();
+        for asked in 0..=n {
+            let (mut graph, rows) = crowd(n);
+            let faces = Faces::new(&mut graph, &rows, vec![true; n]);
+            let before = graph.len();
+            let left = Cell::new(asked);
+            let stop = || left.replace(left.get().saturating_sub(1)) == 0;
+            let face = faces.leaf(&mut graph, &vec![false; n], &stop);
+            assert_eq!(face.is_some(), asked == n, "stopped at {asked}");
+            grown.push(graph.len() - before);
+        }
+        assert_eq!(grown[0], 0);
+        assert!(grown.is_sorted() && grown[n - 1] > grown[1], "{grown:?}");
+    }
+
+    /// However often a walk is stopped and taken up again, it sees every face once, in the same order.
+    #[test]
+    fn a_walk_that_was_stopped_goes_on_where_it_was() {
+        let (mut graph, rows) = crowd(4);
+        let mut whole = Faces::new(&mut graph, &rows, vec![true; 4]);
+        let mut halting = whole.clone();
+        let expected: Vec<Face> = std::iter::from_fn(|| whole.next(&mut graph, &|| false)).collect();
+        let count = Cell::new(0);
+        let stop = || count.replace(count.get() + 1) % 3 == 2;
+        let mut seen = Vec::new();
+        // Of three askings two let it go on, so that 16 faces cannot take more than 100 turns.
+        for _ in 0..100 {
+            seen.extend(halting.next(&mut graph, &stop));
+        }
+        assert!(halting.is_done() && whole.is_done());
+        assert_eq!((seen.len(), &seen), (16, &expected));
+    }
 }

@@ -18,6 +18,7 @@ mod search;
 mod sharpen;
 pub mod starts;
 mod witness;
+mod zone;
 
 use std::sync::{Mutex, OnceLock};
 
@@ -190,9 +191,9 @@ pub fn find(graph: &mut Graph, problem: &Problem<'_>, budget: &Budget<'_>) -> Eq
         // Two species have four faces: not worth another thread.
         0 | 1 => Whole::of(faces, graph, problem, budget),
         _ if n <= 2 => Whole::of(faces, graph, problem, budget),
-        workers => at_once(&faces.divide(graph, WALKS_A_WORKER * workers), graph, problem, budget),
+        workers => at_once(&faces.divide(graph, WALKS_A_WORKER * workers, &|| (budget.stop)()), graph, problem, budget),
     };
-    whole.finish()
+    whole.finish(budget)
 }
 
 /// Walks at once; what they find is put together in the order of the walks. A graph serves one walk at a time and goes
@@ -231,32 +232,43 @@ impl Whole {
     fn of(mut faces: Faces, graph: &mut Graph, problem: &Problem<'_>, budget: &Budget<'_>) -> Self {
         let mut whole = Self::new();
         let mut rates = None;
-        while let Some(face) = faces.next(graph) {
-            if (budget.stop)() {
-                // Whatever the walk had still to see may be anywhere in the box.
-                let whole_box = problem.sides.iter().map(|side| Interval::new(side[0], side[1])).collect();
-                let text = "the budget ended before every face was looked at";
-                whole.unresolved.push(Unresolved::new(whole_box, Probably::Budget, text));
-                break;
-            }
+        let mut stopped = (budget.stop)();
+        while !stopped && let Some(face) = faces.next(graph, budget.stop) {
             whole.faces += 1;
             let found = whole.look_at(graph, &face, problem, budget);
             if !found.is_empty() {
                 let rates = &*rates.get_or_insert_with(|| Tape::new(graph, problem.rows));
-                whole.keep(found, rates, graph, problem);
+                whole.keep(found, rates, graph, problem, budget.stop);
             }
+            stopped = (budget.stop)();
+        }
+        if !faces.is_done() {
+            // Whatever the walk had still to see may be anywhere in the box.
+            let whole_box = problem.sides.iter().map(|side| Interval::new(side[0], side[1])).collect();
+            let text = "the budget ended before every face was looked at";
+            whole.unresolved.push(Unresolved::new(whole_box, Probably::Budget, text));
         }
         whole
     }
 
     /// Takes what was found on a face for equilibria, if the rates go to 0 there.
-    fn keep(&mut self, found: Vec<Candidate>, rates: &Tape, graph: &mut Graph, problem: &Problem<'_>) {
+    fn keep(
+        &mut self,
+        found: Vec<Candidate>,
+        rates: &Tape,
+        graph: &mut Graph,
+        problem: &Problem<'_>,
+        stop: &dyn Fn() -> bool,
+    ) {
         for candidate in found {
-            match border::accept(graph, candidate, rates, problem, &|| false) {
+            let enclosure = candidate.equilibrium.enclosure.clone();
+            match border::accept(graph, candidate, rates, problem, stop) {
                 Some(border::Settled::Root(candidate)) => self.candidates.push(candidate),
                 Some(border::Settled::Open(unresolved)) => self.unresolved.push(unresolved),
-                // Only where it was stopped.
-                None => {}
+                None => {
+                    let text = "the budget ended before it was known whether the rates have a value here";
+                    self.unresolved.push(Unresolved::new(enclosure, Probably::Budget, text));
+                }
             }
         }
     }
@@ -293,7 +305,7 @@ impl Whole {
         // Where nobody is present there is nothing to search.
         self.boxes += if face.variables.is_empty() { 0 } else { found.boxes };
         self.none_above = self.none_above && above::is_empty(&tape, problem.values, &region);
-        let remains = if found.open.is_empty() && found.continuum.is_empty() {
+        let remains = if found.open.is_empty() && found.continuum.is_empty() && found.close.is_empty() {
             Remains::default()
         } else {
             remains::look_again(&tape, problem.values, face, n, &found, budget.stop)
@@ -310,9 +322,9 @@ impl Whole {
         candidates
     }
 
-    fn finish(mut self) -> Equilibria {
+    fn finish(mut self, budget: &Budget<'_>) -> Equilibria {
         border::merge(&mut self.candidates);
-        let unresolved = remains::gathered(self.unresolved);
+        let unresolved = remains::gathered(self.unresolved, budget.stop);
         let mut list: Vec<Equilibrium> = self.candidates.into_iter().map(|candidate| candidate.equilibrium).collect();
         list.sort_by(order);
         let complete = unresolved.is_empty();

@@ -1,6 +1,6 @@
 //! What the boxes that stayed open are: settled after all, or said to be open, and what they probably are.
 
-use super::cluster::{Heap, decide};
+use super::cluster::{Close, Heap, decide};
 use super::everywhere;
 use super::faces::Face;
 use super::newton::{Equations, Proved, Region};
@@ -81,6 +81,7 @@ pub(super) fn look_again(
     let mut equations = Equations::new(tape, values, found.scale.clone()).until(stop);
     let out_of_budget =
         |boxes: &[Region], text: String| Unresolved::new(everywhere(&hull_of(boxes), face, n), Probably::Budget, text);
+    remains.unresolved.extend(found.close.iter().map(|close| too_close(close, face, n)));
     if found.stopped {
         let text = format!("the budget ended with {} boxes not looked at", found.open.len());
         remains.unresolved.push(out_of_budget(&found.open, text));
@@ -109,9 +110,11 @@ pub(super) fn look_again(
                 }
                 remains.roots.extend(roots);
             }
-            Heap::DoubleOrTwo => {
-                let text = "none, one double or two equilibria: closer together than numbers can tell".to_owned();
-                remains.unresolved.push(Unresolved::new(everywhere(&heap, face, n), Probably::DoubleRoot, text));
+            Heap::Close(mut close) => {
+                close.within.iter_mut().zip(&heap).for_each(|(side, heap)| *side = side.intersect(*heap));
+                if !close.within.iter().any(|side| side.is_empty()) {
+                    remains.unresolved.push(too_close(&close, face, n));
+                }
             }
             Heap::Undecided => {
                 let (probably, text) = guess(&mut equations, &heap);
@@ -120,6 +123,16 @@ pub(super) fn look_again(
         }
     }
     remains
+}
+
+fn too_close(close: &Close, face: &Face, n: usize) -> Unresolved {
+    let count = match (close.least, close.most) {
+        (_, 2) => "none, one double or two equilibria",
+        (0, _) => "up to three equilibria",
+        _ => "one, two or three equilibria",
+    };
+    let text = format!("{count}: closer together than numbers can tell");
+    Unresolved::new(everywhere(&close.within, face, n), Probably::DoubleRoot, text)
 }
 
 fn continuum(boxes: &[Region], face: &Face, n: usize, found: &Found) -> Unresolved {
@@ -140,10 +153,17 @@ fn continuum(boxes: &[Region], face: &Face, n: usize, found: &Found) -> Unresolv
     Unresolved { witnesses, dimension: Some(dimension), ..Unresolved::new(region, Probably::Continuum, text) }
 }
 
-/// Drops a region that lies in another of the same kind: one place may stay open on several faces.
-pub(super) fn gathered(all: Vec<Unresolved>) -> Vec<Unresolved> {
+/// Drops a region that lies in another of the same kind: one place may stay open on several faces. Each is held against
+/// all others; once `stop` says so, the rest stay as they are.
+pub(super) fn gathered(all: Vec<Unresolved>, stop: &dyn Fn() -> bool) -> Vec<Unresolved> {
     let mut kept: Vec<Unresolved> = Vec::new();
-    for open in all {
+    let mut all = all.into_iter();
+    while let Some(open) = all.next() {
+        if stop() {
+            kept.push(open);
+            kept.extend(all);
+            break;
+        }
         let within = |inner: &Unresolved, outer: &Unresolved| {
             inner.probably == outer.probably && inner.region.iter().zip(&outer.region).all(|(a, b)| a.subset_of(*b))
         };
@@ -172,8 +192,10 @@ fn heaps<'b>(boxes: impl Iterator<Item = &'b Region>, stop: &dyn Fn() -> bool) -
     let mut heaps: Vec<Region> = Vec::new();
     for region in boxes {
         let mut region = region.clone();
-        let stopped = stop();
-        while !stopped && let Some(position) = heaps.iter().position(|other| nearly_touch(other, &region)) {
+        // Joined to one heap, it may come near another: many looks at all heaps for one box.
+        while !stop()
+            && let Some(position) = heaps.iter().position(|other| nearly_touch(other, &region))
+        {
             let other = heaps.swap_remove(position);
             region = region.iter().zip(&other).map(|(a, b)| a.hull(*b)).collect();
         }
@@ -196,4 +218,43 @@ fn hull_of(boxes: &[Region]) -> Region {
         hull.iter_mut().zip(region).for_each(|(hull, side)| *hull = hull.hull(*side));
     }
     hull
+}
+
+#[cfg(test)]
+mod tests {
+    use std::cell::Cell;
+
+    use super::*;
+
+    fn at(x: f64, width: f64) -> Region {
+        vec![Interval::new(x, x + width)]
+    }
+
+    /// Stopped, what is left to gather or to join stays as it is: nothing is lost, and `stop` is not asked again.
+    #[test]
+    fn gathering_and_joining_can_be_stopped_anywhere() {
+        for asked in [0, 1, 10, 1000] {
+            let count = Cell::new(0);
+            let stop = || count.replace(count.get() + 1) >= asked;
+            let apart = |k: u16| Unresolved::new(at(2.0 * f64::from(k), 1.0), Probably::DoubleRoot, "");
+            let all: Vec<Unresolved> = (0..3000).map(apart).collect();
+            assert_eq!(gathered(all.clone(), &stop), all);
+            assert_eq!(count.get(), asked + 1);
+            count.set(0);
+            // Each touches the next, so that every one but the first is joined while joining goes on.
+            let chain: Vec<Region> = (0..3000u16).map(|k| at(f64::from(k), 1.0)).collect();
+            let heaps = heaps(chain.iter(), &stop);
+            let hull = hull_of(&heaps);
+            assert_eq!((hull, heaps.len() > 1), (at(0.0, 3000.0), asked < 3000));
+        }
+    }
+
+    #[test]
+    fn a_region_within_another_of_its_kind_is_dropped() {
+        let open = |x: f64, width: f64, probably| Unresolved::new(at(x, width), probably, "");
+        let (double, kink) = (Probably::DoubleRoot, Probably::Kink);
+        let all = vec![open(1.0, 1.0, double), open(0.0, 4.0, double), open(1.0, 1.0, kink), open(2.0, 1.0, double)];
+        let kept = vec![open(0.0, 4.0, double), open(1.0, 1.0, kink)];
+        assert_eq!(gathered(all, &|| false), kept);
+    }
 }

@@ -2,12 +2,15 @@
 //!
 //! Breadth first, so that roots are found early and their surroundings fall away. A box is cut by what is known about
 //! proved roots, by constraint propagation and by interval Newton steps; then Newton's method from its middle proposes a
-//! root. What is still open when a box is very small stays, and is said to be open.
+//! root. Around a singular point a [zone](super::zone) is settled at once. What is still open when a box is very small stays,
+//! and is said to be open.
 
 use std::collections::VecDeque;
 
+use super::cluster::{Close, Heap};
 use super::newton::{Cut, Equations, Proved, Region};
 use super::witness::Witnesses;
+use super::zone::{self, Zone};
 use crate::expr::tape::Tape;
 use crate::expr::tape::propagate::{Propagation, Sweep};
 use crate::num::interval::Interval;
@@ -26,6 +29,9 @@ const LOPSIDED: f64 = 32.0;
 /// 6 % fewer boxes than cut at an eighth, and hardly more or fewer with another factor from 16 up.
 const WIDE_SPAN: f64 = 32.0;
 
+/// Zones that came to nothing before no more are tried: along a continuum none comes to anything.
+const MOST_IN_VAIN: usize = 4;
+
 /// What one face holds.
 #[derive(Debug, Default)]
 pub(super) struct Found {
@@ -34,6 +40,8 @@ pub(super) struct Found {
     pub(super) open: Vec<Region>,
     /// Boxes that lie on a continuum of equilibria.
     pub(super) continuum: Vec<Region>,
+    /// Roots that cannot be told apart.
+    pub(super) close: Vec<Close>,
     /// Singular points met on the way.
     pub(super) witnesses: Witnesses,
     /// Size of each variable.
@@ -54,13 +62,20 @@ pub(super) struct Limits<'l> {
 pub(super) struct Search<'t> {
     equations: Equations<'t>,
     propagation: Propagation<'t>,
+    tape: &'t Tape,
+    parameters: &'t [f64],
+    /// All of the region that was to be searched and is not at once seen to be empty.
+    whole: Region,
+    zones: Vec<Zone>,
+    /// Zones that came to nothing.
+    in_vain: usize,
     found: Found,
     queue: VecDeque<Region>,
 }
 
 impl<'t> Search<'t> {
     /// Looks for all roots of the tape's outputs in a region.
-    pub(super) fn run(tape: &'t Tape, parameters: &[f64], region: Region, limits: &Limits<'_>) -> Found {
+    pub(super) fn run(tape: &'t Tape, parameters: &'t [f64], region: Region, limits: &Limits<'_>) -> Found {
         let exact: Vec<Interval> = parameters.iter().map(|&p| Interval::point(p)).collect();
         let mut propagation = tape.start_propagation(&exact);
         let mut region = region;
@@ -70,8 +85,10 @@ impl<'t> Search<'t> {
         // What is left after the first cut says how large things are; the box as given may be far too wide.
         let scale = region.iter().map(|side| side.mag().clamp(f64::MIN_POSITIVE, f64::MAX)).collect();
         let equations = Equations::new(tape, parameters, scale);
-        let queue = VecDeque::from([region]);
-        let mut search = Search { equations, propagation, found: Found::default(), queue };
+        let queue = VecDeque::from([region.clone()]);
+        let (zones, found) = (Vec::new(), Found::default());
+        let mut search =
+            Search { equations, propagation, tape, parameters, whole: region, zones, in_vain: 0, found, queue };
         while let Some(region) = search.queue.pop_front() {
             if search.found.boxes >= limits.boxes || (limits.stop)() {
                 search.found.stopped = true;
@@ -93,11 +110,15 @@ impl<'t> Search<'t> {
         let mut proved = false;
         if let Some(point) = self.equations.approximate(&middle, Some(&region)) {
             proved = self.try_to_prove(&point, &region);
-            if trim(&mut region, &self.found.roots) == Kept::Nothing {
+            if self.trim(&mut region) == Kept::Nothing {
                 return;
             }
         }
-        if !proved && self.found.witnesses.settles(&mut self.equations, &region) {
+        let on_continuum = !proved && self.found.witnesses.settles(&mut self.equations, &region, &slopes);
+        if !on_continuum && self.settle_a_zone() && self.trim(&mut region) == Kept::Nothing {
+            return;
+        }
+        if on_continuum {
             self.found.continuum.push(region);
         } else if self.is_smallest(&region) {
             self.last_look(region);
@@ -111,9 +132,7 @@ impl<'t> Search<'t> {
         let mut slopes = Vec::new();
         for _ in 0..ROUNDS {
             let before = region.clone();
-            if trim(region, &self.found.roots) == Kept::Nothing
-                || propagate(&mut self.propagation, region) == Kept::Nothing
-            {
+            if self.trim(region) == Kept::Nothing || propagate(&mut self.propagation, region) == Kept::Nothing {
                 return None;
             }
             match self.equations.cut(region) {
@@ -126,6 +145,47 @@ impl<'t> Search<'t> {
             }
         }
         Some(slopes)
+    }
+
+    /// Takes away what is settled: all of the box, or what one side leaves.
+    fn trim(&self, region: &mut Region) -> Kept {
+        let by_root = self.found.roots.iter().any(|root| cut_away(region, &root.unique) == Kept::Nothing);
+        if by_root || self.zones.iter().any(|zone| zone.trim(region) == Kept::Nothing) {
+            Kept::Nothing
+        } else {
+            Kept::Something
+        }
+    }
+
+    /// Settles the surroundings of a singular point met on the way, if there is a new one; whether that did anything.
+    fn settle_a_zone(&mut self) -> bool {
+        let Some(point) = self.found.witnesses.next_singular() else { return false };
+        if self.in_vain >= MOST_IN_VAIN || self.zones.iter().any(|zone| zone.holds(&point)) {
+            return false;
+        }
+        let settled = zone::settle(&mut self.equations, self.tape, self.parameters, &point);
+        let Some((around, heap)) = settled else {
+            self.in_vain += 1;
+            return false;
+        };
+        let left = match heap {
+            Heap::Undecided => return false,
+            Heap::Empty => None,
+            Heap::Roots(roots) => {
+                roots.into_iter().for_each(|root| self.keep(root));
+                None
+            }
+            Heap::Close(close) if !self.is_smallest(&close.within) => Some(close.within),
+            Heap::Close(mut close) => {
+                close.within.iter_mut().zip(&self.whole).for_each(|(side, whole)| *side = side.intersect(*whole));
+                if !close.within.iter().any(|side| side.is_empty()) {
+                    self.found.close.push(close);
+                }
+                None
+            }
+        };
+        self.zones.push(Zone { around, left });
+        true
     }
 
     /// A box that is proved to hold exactly one root: finds and keeps it.
@@ -175,7 +235,7 @@ impl<'t> Search<'t> {
         if let Some(point) = self.equations.approximate(&middle, None) {
             self.try_to_prove(&point, &region);
         }
-        if trim(&mut region, &self.found.roots) != Kept::Nothing {
+        if self.trim(&mut region) != Kept::Nothing {
             self.found.open.push(region);
         }
     }
@@ -213,7 +273,7 @@ impl<'t> Search<'t> {
 
 /// Whether anything is left of a box.
 #[derive(Clone, Copy, PartialEq, Eq)]
-enum Kept {
+pub(super) enum Kept {
     Something,
     Nothing,
 }
@@ -231,15 +291,13 @@ fn propagate(propagation: &mut Propagation<'_>, region: &mut Region) -> Kept {
     Kept::Something
 }
 
-/// Cuts off what lies where a proved root is alone: all of the box, or what one side leaves.
-fn trim(region: &mut Region, roots: &[Proved]) -> Kept {
-    for root in roots {
-        let mut uncovered = (0..region.len()).filter(|&i| !region[i].subset_of(root.unique[i]));
-        match (uncovered.next(), uncovered.next()) {
-            (None, _) => return Kept::Nothing,
-            (Some(i), None) => region[i] = left_of(region[i], root.unique[i]),
-            _ => {}
-        }
+/// Cuts off what is covered: all of the box, or what one side leaves.
+pub(super) fn cut_away(region: &mut Region, covered: &[Interval]) -> Kept {
+    let mut uncovered = (0..region.len()).filter(|&i| !region[i].subset_of(covered[i]));
+    match (uncovered.next(), uncovered.next()) {
+        (None, _) => return Kept::Nothing,
+        (Some(i), None) => region[i] = left_of(region[i], covered[i]),
+        _ => {}
     }
     Kept::Something
 }

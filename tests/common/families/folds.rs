@@ -44,37 +44,53 @@ fn quota(n: usize, catch: &str, title: &str) -> ModelText {
 /// `f_i = (u_i − c_i)(1 + u_i²/4) + k_i f₁`, rows `M f`; the pair is `B⁻¹ (c ± √s e₁)`. B and M are products of triangular
 /// matrices with ones on the diagonal and small fractions of powers of 2 beside it, so that f64 holds B⁻¹ exactly, too.
 pub fn hidden_pair(n: usize, gap: f64, seed: u64) -> Family {
-    let (text, centre, direction, s) = hidden(n, gap, seed, &format!("hidden pair {n}, gap {gap:e}, seed {seed}"));
+    let s = (gap / 2.0).powi(2);
+    let first = Form { constant: s, power: 2 };
+    let (text, centre, direction) = hidden(n, &first, seed, &format!("hidden pair {n}, gap {gap:e}, seed {seed}"));
     Family::complete(text.title.clone(), text, pair(&centre, &direction, Interval::point(s)))
 }
 
 /// The same with the pair merged.
 pub fn hidden_fold(n: usize, seed: u64) -> Family {
-    let (text, centre, ..) = hidden(n, 0.0, seed, &format!("hidden fold {n}, seed {seed}"));
+    merged(n, 2, seed, &format!("hidden fold {n}, seed {seed}"))
+}
+
+/// The same with `f₁ = −(u₁ − c₁)³`: three that have merged.
+pub fn hidden_cusp(n: usize, seed: u64) -> Family {
+    merged(n, 3, seed, &format!("hidden cusp {n}, seed {seed}"))
+}
+
+fn merged(n: usize, power: u8, seed: u64, title: &str) -> Family {
+    let (text, centre, _) = hidden(n, &Form { constant: 0.0, power }, seed, title);
     Family { degenerate: vec![exactly(&centre)], ..Family::complete(text.title.clone(), text, Vec::new()) }
 }
 
-/// The model, the middle of the pair, B⁻¹ e₁, and s.
-fn hidden(n: usize, gap: f64, seed: u64, title: &str) -> (ModelText, Vec<f64>, Vec<f64>, f64) {
+/// `f₁ = constant − (u₁ − c₁)^power`
+struct Form {
+    constant: f64,
+    power: u8,
+}
+
+/// The model, the point where every `u_i = c_i`, and B⁻¹ e₁.
+fn hidden(n: usize, first: &Form, seed: u64, title: &str) -> (ModelText, Vec<f64>, Vec<f64>) {
     let mut source = Source::new(seed);
     let (b, inverse) = unimodular(n, &mut source);
     let (mixing, _) = unimodular(n, &mut source);
     let centre: Vec<f64> = (0..n).map(|_| whole(&mut source, 2, 4) as f64).collect();
-    let s = (gap / 2.0).powi(2);
     let (u, f) = ["u", "f"].map(|letter| (1..=n).map(|i| format!("{letter}{i}")).collect::<Vec<_>>()).into();
     let mut shorthand: Vec<_> = u.iter().zip(&b).map(|(u, row)| (u.clone(), combination(row, &symbols(n)))).collect();
     for i in 0..n {
         let c = b[i].iter().zip(&centre).map(|(b, x)| b * x).sum::<f64>();
         let off = combination(&[1.0, -c], &[u[i].clone(), String::new()]);
         let formula = match i {
-            0 => format!("{s} - ({off})^2"),
+            0 => format!("{} - ({off})^{}", first.constant, first.power),
             _ => format!("({off})*(1 + {}^2/4) + {}*f1", u[i], whole(&mut source, 1, 3)),
         };
         shorthand.push((f[i].clone(), formula));
     }
     let rows: Vec<_> = mixing.iter().map(|row| combination(row, &f)).collect();
     let direction = inverse.iter().map(|row| row[0]).collect();
-    (ModelText { shorthand, ..model(title, "8", &rows) }, centre, direction, s)
+    (ModelText { shorthand, ..model(title, "8", &rows) }, centre, direction)
 }
 
 type Matrix = Vec<Vec<f64>>;

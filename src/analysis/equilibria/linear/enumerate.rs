@@ -4,7 +4,7 @@ use std::sync::OnceLock;
 
 use super::super::{Budget, Equilibria, Equilibrium, Probably, Problem, Unresolved, order};
 use super::singular::{Held, look_at as look_at_singular};
-use super::{Affine, proved};
+use super::{Affine, proved, surface};
 use crate::num::interval::Interval;
 use crate::num::solve::solve;
 
@@ -13,6 +13,9 @@ const PIECES_A_WORKER: usize = 8;
 
 /// Fewer faces than this are not worth another thread.
 const WORTH_SHARING: usize = 256;
+
+/// So many lines and surfaces of equilibria get points.
+const MOST_WITNESSED: usize = 64;
 
 /// All equilibria in the box, and what could not be decided.
 pub(super) fn every_face(community: &Affine, problem: &Problem<'_>, budget: &Budget<'_>) -> Equilibria {
@@ -25,7 +28,35 @@ pub(super) fn every_face(community: &Affine, problem: &Problem<'_>, budget: &Bud
         // Each piece is done once, so its place is free.
         let _ = found[piece].set(Faces { community, problem, found: Found::new() }.look_at_all(&free, some, budget));
     });
-    found.into_iter().filter_map(OnceLock::into_inner).map(|faces| faces.found).fold(Found::new(), Found::and).finish()
+    let found = found.into_iter().filter_map(OnceLock::into_inner).map(|faces| faces.found);
+    let mut found = found.fold(Found::new(), Found::and);
+    let surfaces = found.unresolved.iter_mut().filter(|open| open.probably == Probably::Continuum);
+    surfaces.take(MOST_WITNESSED).for_each(|open| witness(community, open, budget.stop));
+    found.finish()
+}
+
+/// Gives a line or surface of equilibria some of its points.
+fn witness(community: &Affine, open: &mut Unresolved, stop: &dyn Fn() -> bool) {
+    let present: Vec<usize> = (0..community.species()).filter(|&i| open.region[i] != Interval::ZERO).collect();
+    let (matrix, right) = community.among(&present);
+    let sides: Vec<Interval> = present.iter().map(|&i| open.region[i]).collect();
+    let points = surface::points(&matrix, &right, &sides, open.dimension.unwrap_or(0), stop);
+    let everywhere = |point: Vec<f64>| {
+        let mut state = vec![0.0; community.species()];
+        present.iter().zip(point).for_each(|(&i, x)| state[i] = x);
+        state
+    };
+    if !points.is_empty() {
+        open.text = of_surface(open.dimension.unwrap_or(0), "as it seems");
+    }
+    open.witnesses = points.into_iter().map(everywhere).collect();
+}
+
+fn of_surface(dimension: usize, doubt: &str) -> String {
+    let what = if dimension == 1 { "a line" } else { "a surface" };
+    format!(
+        "those present do not limit each other independently: {what} of equilibria (dimension {dimension}), {doubt}"
+    )
 }
 
 /// What some faces hold.
@@ -130,10 +161,7 @@ impl Faces<'_> {
                 self.leave_open(present, &region, Probably::DoubleRoot, text.to_owned(), None);
             }
             Held::Perhaps { region, dimension } => {
-                let what = if dimension == 1 { "a line" } else { "a surface" };
-                let text = format!(
-                    "those present do not limit each other independently: {what} of equilibria (dimension {dimension}), or none"
-                );
+                let text = of_surface(dimension, "or none");
                 self.leave_open(present, &region, Probably::Continuum, text, Some(dimension));
             }
         }

@@ -2,7 +2,7 @@
 //!
 //! Then the equilibria on a face are the solutions of one linear system, and enumeration is exact. `recognise` reads growth
 //! and matrix off the graph, however the rows were written; `enumerate` solves every face while faces are few, `singular`
-//! says what a face holds whose matrix is singular; `assembly` pivots to a community that no absent species invades where
+//! says what a face holds whose matrix is singular, `surface` gives points of it; `assembly` pivots to a community that no absent species invades where
 //! faces are too many; `sharpen` takes enclosures to the last digit. All produce [`Equilibria`], as the search for general rates does.
 
 mod assembly;
@@ -10,6 +10,7 @@ mod enumerate;
 mod recognise;
 mod sharpen;
 mod singular;
+mod surface;
 
 use super::{Budget, Equilibria, Equilibrium, Problem};
 use crate::num::interval::Interval;

@@ -44,7 +44,7 @@ pub(super) fn hunt(
     effort: &Effort<'_>,
 ) -> Bag {
     let tape = Tape::over(graph, &face.rows, &face.variables);
-    let Some(region) = narrowed(&tape, face, problem) else { return Bag::default() };
+    let Some(region) = narrowed(&tape, face, problem, effort.stop) else { return Bag::default() };
     let scale: Vec<f64> = region.iter().map(|side| side.mag().clamp(f64::MIN_POSITIVE, f64::MAX)).collect();
     let equations = Equations::new(&tape, problem.values, scale.clone()).until(effort.stop);
     let descent = Descent::new(&tape, problem.values, &face.divided, &scale);
@@ -71,15 +71,15 @@ pub(super) fn hunt(
     bag
 }
 
-/// What propagation leaves of the face's box; `None` where it proves that there is no root.
-fn narrowed(tape: &Tape, face: &Face, problem: &Problem<'_>) -> Option<Region> {
+/// What propagation leaves of the face's box; `None` where it proves that there is no root, or was stopped.
+fn narrowed(tape: &Tape, face: &Face, problem: &Problem<'_>, stop: &dyn Fn() -> bool) -> Option<Region> {
     let exact: Vec<Interval> = problem.values.iter().map(|&value| Interval::point(value)).collect();
     let mut propagation = tape.start_propagation(&exact);
     let side = |&i: &usize| Interval::new(problem.sides[i][0], problem.sides[i][1]);
     let mut region: Region = face.variables.iter().map(side).collect();
     for _ in 0..SWEEPS {
         let before = region.clone();
-        if propagation.sweep(&mut region) == Sweep::Empty {
+        if stop() || propagation.sweep(&mut region) == Sweep::Empty {
             return None;
         }
         if region == before {

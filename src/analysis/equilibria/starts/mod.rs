@@ -135,7 +135,9 @@ impl All<'_> {
         let mut places = Vec::new();
         for equilibrium in states {
             let state = &equilibrium.state;
-            run.at(state);
+            if run.at_unless(state, &|| (self.budget.stop)()).is_none() {
+                break;
+            }
             let rate = |i: usize| run.gradient(i).map_or(0.0, |row| row[i]);
             let invaders: Vec<usize> = (0..state.len()).filter(|&i| state[i] == 0.0 && rate(i) > 0.0).collect();
             let fastest = invaders.iter().copied().max_by(|&i, &j| rate(i).total_cmp(&rate(j)));
@@ -149,7 +151,8 @@ impl All<'_> {
 
     /// The places whose faces were not seen yet, each once, with the starting points of all that lead to it.
     fn distinct(&mut self, places: Vec<Place>) -> Vec<Place> {
-        let faces = self.each(places.len(), |graph, k| self.faces.leaf(graph, &places[k].wanted));
+        let faces =
+            self.each(places.len(), |graph, k| self.faces.leaf(graph, &places[k].wanted, &|| (self.budget.stop)()));
         let mut distinct: Vec<Place> = Vec::new();
         let mut position: BTreeMap<Vec<usize>, usize> = BTreeMap::new();
         for (face, place) in faces.into_iter().zip(places) {
@@ -166,7 +169,7 @@ impl All<'_> {
 
     fn hunt_at(&mut self, places: &[Place], starts: usize) {
         let bags = self.each(places.len(), |graph, k| {
-            let face = self.faces.leaf(graph, &places[k].wanted)?;
+            let face = self.faces.leaf(graph, &places[k].wanted, &|| (self.budget.stop)())?;
             let on_face = |state: &Vec<f64>| face.variables.iter().map(|&i| state[i]).collect();
             let given: Vec<Vec<f64>> = places[k].given.iter().map(on_face).collect();
             let effort = Effort { starts, stop: &|| (self.budget.stop)() };
