@@ -27,3 +27,4 @@ pub mod solve;
 pub mod stationary;
 pub mod transient;
 pub mod verified;
+pub mod wide;

@@ -1,6 +1,9 @@
 //! Functions for batches of numbers, fast because they need not be rounded correctly; never for proofs.
 //!
 //! Plain arithmetic on whole arrays, so that the compiler vectorises it and every processor gives the same bits.
+#![expect(clippy::inline_always, reason = "the loops must end up inside the variant compiled for a processor feature")]
+
+use super::wide::{self, Loops};
 
 /// Adding it rounds a small number to a whole one, which then stands in the lowest bits.
 const ROUNDER: f64 = 1.5 * (1u64 << 52) as f64;
@@ -26,17 +29,32 @@ const SERIES: [f64; 14] = [
 
 /// Replaces each x by e^x, to within 4 ε of it; x is taken into [−708, 709] first. NaN stays NaN.
 pub fn exp_all(values: &mut [f64]) {
-    for value in values {
-        let x = value.clamp(-708.0, 709.0);
-        let rounded = x * std::f64::consts::LOG2_E + ROUNDER;
-        let whole = rounded - ROUNDER;
-        let rest = (x - whole * LN_2[0]) - whole * LN_2[1];
-        let power = f64::from_bits(rounded.to_bits().wrapping_add(1023) << 52);
-        *value = power * SERIES.iter().fold(0.0, |sum, c| sum * rest + c);
+    wide::execute(Exponentials(values));
+}
+
+struct Exponentials<'v>(&'v mut [f64]);
+
+impl Loops for Exponentials<'_> {
+    #[inline(always)]
+    fn run(self) {
+        for value in self.0 {
+            exp(value);
+        }
     }
 }
 
+#[inline(always)]
+fn exp(value: &mut f64) {
+    let x = value.clamp(-708.0, 709.0);
+    let rounded = x * std::f64::consts::LOG2_E + ROUNDER;
+    let whole = rounded - ROUNDER;
+    let rest = (x - whole * LN_2[0]) - whole * LN_2[1];
+    let power = f64::from_bits(rounded.to_bits().wrapping_add(1023) << 52);
+    *value = power * SERIES.iter().fold(0.0, |sum, c| sum * rest + c);
+}
+
 /// ln x to within 0.07, for x > 0: the exponent, and the fraction taken for its own logarithm.
+#[inline(always)]
 pub fn ln_roughly(x: f64) -> f64 {
     let bits = x.to_bits() as f64 / (1u64 << 52) as f64;
     (bits - 1023.0) * std::f64::consts::LN_2

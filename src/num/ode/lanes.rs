@@ -2,10 +2,12 @@
 //!
 //! A lane that is done is given another start by the caller, so that all keep working. No stiffness is looked for and no
 //! continuous output is made: what is asked here is where paths go, not how.
+#![expect(clippy::inline_always, reason = "the loops must end up inside the variant compiled for a processor feature")]
 
 use super::Tolerance;
 use super::dormand_prince::{A, E, STAGES};
 use crate::num::rapid;
+use crate::num::wide::{self, Loops};
 
 /// How many paths.
 pub const WIDTH: usize = 64;
@@ -39,6 +41,27 @@ pub struct LaneStepper {
     kept: [bool; WIDTH],
     /// Lanes that were set since the rates were last computed.
     fresh: bool,
+}
+
+/// The state at which a stage evaluates.
+struct Combining<'s>(&'s mut LaneStepper, &'s [f64]);
+
+impl Loops for Combining<'_> {
+    #[inline(always)]
+    fn run(self) {
+        self.0.combine(self.1);
+    }
+}
+
+/// The end of a trial.
+struct Judging<'s>(&'s mut LaneStepper);
+
+impl Loops for Judging<'_> {
+    #[inline(always)]
+    fn run(self) {
+        let error = self.0.error();
+        self.0.decide(&error);
+    }
 }
 
 impl LaneStepper {
@@ -105,13 +128,13 @@ impl LaneStepper {
             self.fresh = false;
         }
         for (stage, weights) in A.iter().enumerate() {
-            self.combine(weights);
+            wide::execute(Combining(self, weights));
             flow.rates(&self.end, &mut self.k[stage + 1]);
         }
-        let error = self.error();
-        self.decide(&error);
+        wide::execute(Judging(self));
     }
 
+    #[inline(always)]
     fn combine(&mut self, weights: &[f64]) {
         for (i, end) in self.end.iter_mut().enumerate() {
             let mut sum = [0.0; WIDTH];
@@ -128,6 +151,7 @@ impl LaneStepper {
     }
 
     /// Mean square of the errors over what is allowed.
+    #[inline(always)]
     fn error(&self) -> Batch {
         let mut total = [0.0; WIDTH];
         for (i, tolerance) in self.tolerance.iter().enumerate() {
@@ -146,6 +170,7 @@ impl LaneStepper {
         total.map(|total| total / self.tolerance.len().max(1) as f64)
     }
 
+    #[inline(always)]
     fn decide(&mut self, error: &Batch) {
         let mut factor = [0.0; WIDTH];
         for l in 0..WIDTH {

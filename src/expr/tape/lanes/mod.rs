@@ -2,14 +2,14 @@
 //!
 //! Each operation is read once and done for all lanes, over plain arrays that the compiler vectorises; lanes equal scalar
 //! runs bit for bit. `allocate` shares slots between values that do not live together, `perform` does one operation,
-//! `dispatch` picks the widest vector instructions of the processor at hand.
+//! [`wide`] picks the widest vector instructions of the processor at hand.
 
 use super::number::Number;
 use super::{Block, Register, Tape};
 use crate::expr::graph::Operation;
+use crate::num::wide;
 
 mod allocate;
-mod dispatch;
 mod fuse;
 mod perform;
 
@@ -115,7 +115,7 @@ impl Lanes {
             for (&slot, column) in self.inputs.iter().zip(inputs) {
                 self.slots[slot].0[..count].copy_from_slice(&column[from..from + count]);
             }
-            dispatch::execute(self);
+            wide::execute(perform::Steps(self));
             self.note_undefined(from, count);
             for (&slot, column) in self.outputs.iter().zip(outputs.iter_mut()) {
                 column[from..from + count].copy_from_slice(&self.slots[slot].0[..count]);

@@ -8,16 +8,21 @@ type Values = [f64; WIDTH];
 
 use crate::expr::tape::Register;
 use crate::expr::tape::number::Domain;
+use crate::num::wide::Loops;
 
-/// Runs every step. Inlined into each of the dispatcher's variants, so that its loops are vectorised for that processor.
-#[inline(always)]
-pub(super) fn execute(lanes: &mut Lanes) {
-    let Lanes { blocks, steps, slots, spare, undefined, states, .. } = lanes;
-    for step in steps.iter() {
-        // The slot written is none of those read, so taking it out leaves them all in place.
-        std::mem::swap(&mut slots[step.to], spare);
-        perform(step, slots, states, blocks, &mut spare.0, &mut undefined.0);
-        std::mem::swap(&mut slots[step.to], spare);
+/// Every step, to be run.
+pub(super) struct Steps<'l>(pub(super) &'l mut Lanes);
+
+impl Loops for Steps<'_> {
+    #[inline(always)]
+    fn run(self) {
+        let Lanes { blocks, steps, slots, spare, undefined, states, .. } = self.0;
+        for step in steps.iter() {
+            // The slot written is none of those read, so taking it out leaves them all in place.
+            std::mem::swap(&mut slots[step.to], spare);
+            perform(step, slots, states, blocks, &mut spare.0, &mut undefined.0);
+            std::mem::swap(&mut slots[step.to], spare);
+        }
     }
 }
 
