@@ -18,6 +18,8 @@ const SHELLS: usize = 52;
 /// Points in each shell, for each coordinate.
 const POINTS: usize = 16;
 const MOST_POINTS: usize = 128;
+/// Beyond so many coordinates the equation for V alone, which cannot be broken off, takes a second. Paths then end at rest.
+const LARGEST: usize = 200;
 /// The region ends so far inside the last good shell, since shells are only sampled.
 const MARGIN: f64 = 0.8;
 
@@ -44,12 +46,16 @@ pub(super) struct Basin {
     level: f64,
 }
 
-/// The regions of all equilibria of a face that are stable on it.
-pub(super) fn basins(face: &Face, list: &[Equilibrium], motion: Motion) -> Vec<Basin> {
+/// The regions of all equilibria of a face that are stable on it; without those that are not done when `stop`, asked once a
+/// shell, says so, and for large communities none.
+pub(super) fn basins(face: &Face, list: &[Equilibrium], motion: Motion, stop: &dyn Fn() -> bool) -> Vec<Basin> {
+    if face.len() > LARGEST {
+        return Vec::new();
+    }
     let mut field = face.field();
     let on_face = |e: &Equilibrium| (0..face.species).all(|i| face.present.contains(&i) || !e.has(i));
     let candidates = list.iter().enumerate().filter(|(_, e)| on_face(e));
-    candidates.filter_map(|(index, e)| Basin::new(face, &mut field, index, &e.state, motion)).collect()
+    candidates.filter_map(|(index, e)| Basin::new(face, &mut field, index, &e.state, motion, stop)).collect()
 }
 
 /// Units in which no absent species moves another faster than anything moves by itself: a box may be far larger than what
@@ -68,7 +74,17 @@ fn balanced(slopes: &[f64], centre: &[f64], mut unit: Vec<f64>) -> Vec<f64> {
 }
 
 impl Basin {
-    fn new(face: &Face, field: &mut Field<'_>, equilibrium: usize, state: &[f64], motion: Motion) -> Option<Self> {
+    fn new(
+        face: &Face,
+        field: &mut Field<'_>,
+        equilibrium: usize,
+        state: &[f64],
+        motion: Motion,
+        stop: &dyn Fn() -> bool,
+    ) -> Option<Self> {
+        if stop() {
+            return None;
+        }
         let n = face.len();
         let centre: Vec<f64> = face.present.iter().map(|&i| state[i]).collect();
         let unit: Vec<f64> = centre.iter().zip(&face.scale).map(|(&x, &s)| if x > 0.0 { x } else { s }).collect();
@@ -93,7 +109,7 @@ impl Basin {
         // Positive definite only where the equilibrium is stable (Lyapunov 1892).
         let root = quadratic::root(&p, n)?;
         let mut basin = Self { equilibrium, centre, unit, inverse: inverse(&p, n)?, p, level: 0.0 };
-        basin.level = basin.widest(field, &inverse(&root, n)?, motion)?;
+        basin.level = basin.widest(field, &inverse(&root, n)?, motion, stop)?;
         Some(basin)
     }
 
@@ -124,11 +140,14 @@ impl Basin {
     }
 
     /// The level of the last shell before one in which V does not fall everywhere.
-    fn widest(&self, field: &mut Field<'_>, root: &[f64], motion: Motion) -> Option<f64> {
+    fn widest(&self, field: &mut Field<'_>, root: &[f64], motion: Motion, stop: &dyn Fn() -> bool) -> Option<f64> {
         let n = self.centre.len();
         let mut source = Source::new(1);
         let (mut radius, mut good) = (FIRST_SHELL, None);
         for _ in 0..SHELLS {
+            if stop() {
+                return None;
+            }
             for _ in 0..(POINTS * n).min(MOST_POINTS) {
                 let direction: Vec<f64> = (0..n).map(|_| source.between(-1.0, 1.0)).collect();
                 // Anywhere in the shell: where one side of it is not allowed, the other alone would say nothing.

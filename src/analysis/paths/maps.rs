@@ -107,7 +107,7 @@ impl Orbit<'_> {
 
     fn follow(&mut self, known: Known<'_>, left: &mut usize) -> End {
         let n = self.n();
-        let basins = basins(self.face, known.list, Motion::Map);
+        let basins = basins(self.face, known.list, Motion::Map, known.stop);
         let levels: Vec<f64> = basins.iter().map(|basin| basin.level_within(NEAR, &self.states)).collect();
         let (mut x, mut next, mut z) = (self.states.clone(), vec![0.0; n], vec![0.0; n]);
         let mut highest = x.clone();

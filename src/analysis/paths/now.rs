@@ -38,7 +38,7 @@ pub fn from_now(
     stop: &dyn Fn() -> bool,
 ) -> Option<FromNow> {
     let known = Known { list, linear, stop };
-    let middle = cloud::middle(subject.model)?;
+    let middle = subject.model.today()?;
     let ending = go(subject, known, &middle);
     let count = match subject.species() {
         _ if ending.stiff => STARTS_IF_STIFF,
@@ -131,7 +131,7 @@ impl<'k> Tally<'k> {
         }
         let most = if lost.is_empty() { MOST_STEPS } else { STEPS_AFTER_LOSS };
         let motion = if subject.step().is_some() { Motion::Map } else { Motion::Flow };
-        let basins = basins(&face, self.known.list, motion);
+        let basins = basins(&face, self.known.list, motion, self.known.stop);
         let ends = Ends { basins: &basins, rings: &self.rings, most, stop: self.known.stop };
         let fates = match motion {
             Motion::Flow => flock::flow(&face, starts, &ends),

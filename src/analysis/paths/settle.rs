@@ -126,7 +126,7 @@ fn leg<'f>(face: &'f Face, known: Known<'_>, state: &[f64], steps: &mut usize) -
     let returns = Returns::new(walk.stepper.state(), walk.stepper.rates());
     let mut leg = Leg { walk, returns, end: End::Open };
     let start: Vec<f64> = face.present.iter().map(|&i| state[i]).collect();
-    let basins: Vec<(Basin, f64)> = basins(face, known.list, Motion::Flow)
+    let basins: Vec<(Basin, f64)> = basins(face, known.list, Motion::Flow, known.stop)
         .into_iter()
         .map(|basin| (basin.level_within(NEAR, &start), basin))
         .map(|(level, basin)| (basin, level))
