@@ -430,3 +430,15 @@ fn a_box_far_larger_than_what_matters() {
     assert_eq!(found.reaches, Destination::Equilibrium(0));
     assert_eq!(found.shares, [(Destination::Equilibrium(0), 1.0)]);
 }
+
+/// Regions around equilibria of two hundred species take half a minute, in which nothing was asked.
+#[test]
+fn what_is_told_to_stop_looks_for_no_regions() {
+    let text = ModelText::new("at rest", "9", &[("x", "x*(1 - x)"), ("y", "y*(1 - y)")]);
+    let model = read(&format!("{}now: {{x: {{value: 1, cv: 0.1}}, y: 1}}\n", text.yaml()));
+    let reaches = |stop: &dyn Fn() -> bool| {
+        with(&model, 0, |subject, list| from_now(subject, list, &vec![None; list.len()], stop).unwrap().reaches)
+    };
+    assert_eq!(reaches(NEVER), Destination::Equilibrium(3));
+    assert_eq!(reaches(&|| true), Destination::NotSettled);
+}

@@ -29,6 +29,12 @@ impl Model {
         overlaid(&self.harvest, added, self.scenarios.get(scenario), |harvest| &harvest.name)
     }
 
+    /// Today's stock of every species; `None` unless the file has each.
+    pub fn today(&self) -> Option<Vec<f64>> {
+        let of = |i: usize| self.now.iter().find(|survey| survey.species.0 == i).map(|survey| survey.value);
+        (0..self.species.len()).map(of).collect()
+    }
+
     /// The values that the file gives, in the order of parameters.
     pub fn base_values(&self) -> Vec<f64> {
         self.parameters.iter().map(|parameter| parameter.value).collect()

@@ -80,9 +80,21 @@ pub fn norm_one(a: &[f64], n: usize) -> f64 {
     (0..n).map(|j| a.iter().skip(j).step_by(n).map(|x| x.abs()).sum()).fold(0.0, f64::max)
 }
 
+/// The unit matrix of order `n`.
+#[must_use]
+pub fn identity(n: usize) -> Vec<f64> {
+    (0..n * n).map(|k| if k / n == k % n { 1.0 } else { 0.0 }).collect()
+}
+
+/// √Σx², the norm of Frobenius.
+#[must_use]
+pub fn frobenius(x: &[f64]) -> f64 {
+    x.iter().map(|x| x * x).sum::<f64>().sqrt()
+}
+
 /// The rows and columns of a matrix of order `n` with these indices, in their order.
 #[must_use]
-pub fn block(a: &[f64], n: usize, indices: &[usize]) -> Vec<f64> {
+pub fn block<T: Copy>(a: &[T], n: usize, indices: &[usize]) -> Vec<T> {
     indices.iter().flat_map(|&i| indices.iter().map(move |&j| a[i * n + j])).collect()
 }
 
@@ -104,7 +116,7 @@ pub fn swap_rows(entries: &mut [f64], width: usize, i: usize, j: usize) {
 
 #[cfg(test)]
 mod tests {
-    use super::{block, inverse, norm_one, product, transposed};
+    use super::{block, frobenius, identity, inverse, norm_one, product, transposed};
 
     #[test]
     fn multiplies_turns_and_cuts() {
@@ -114,6 +126,7 @@ mod tests {
         assert_eq!(transposed(&a, 3), [1.0, 0.0, 4.0, 2.0, -3.0, 0.0, 0.0, 1.0, 5.0]);
         assert_eq!(norm_one(&a, 3), 6.0);
         assert_eq!(block(&a, 3, &[2, 0]), [5.0, 4.0, 0.0, 1.0]);
+        assert_eq!((identity(2), frobenius(&[3.0, 0.0, -4.0])), (vec![1.0, 0.0, 0.0, 1.0], 5.0));
         assert_eq!((product(&[], &[], 0), transposed(&[], 0), norm_one(&[], 0)), (vec![], vec![], 0.0));
     }
 

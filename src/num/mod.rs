@@ -3,9 +3,11 @@
 //! [`interval`] is the number type that proofs are made of; [`round`] gives the directed bounds under it, [`elementary`]
 //! the scalar functions that every number type shares, [`quotient`] the functions f(u)/u that stay smooth at 0; [`double`]
 //! carries 32 digits with a rigorous error. [`solve`] encloses solutions of linear systems, [`complementarity`] pivots to a
-//! community that no absent species invades. [`eigen`] has eigenvalues and their vectors, [`lyapunov`] quadratic forms that
-//! fall along linear paths, [`verified`] what is proved of them, [`ode`] follows paths. To add a function, give its scalar form in [`elementary`],
-//! its enclosure in [`interval`], and rows of references to `tests/data/interval_references.py`.
+//! community that no absent species invades. [`eigen`] has eigenvalues and their vectors, [`verified`] what is proved of
+//! them, [`lyapunov`] solves the equations of Lyapunov and Stein, on which [`stationary`] covariances rest, [`exponential`]
+//! and [`transient`] say how far linear paths stray, [`ode`] follows paths that are not linear. [`dense`] has what small
+//! matrices share. To add a function, give its scalar form in [`elementary`], its enclosure in [`interval`], and rows of
+//! references to `tests/data/interval_references.py`.
 
 pub mod chi_square;
 pub mod complementarity;

@@ -1,13 +1,16 @@
 //! Stationary covariance under white noise: AC + CAᵀ + Q = 0 for rates, C = ACAᵀ + Q for a map; and the largest response
 //! to noise of a given size.
 //!
-//! Small orders are solved as one linear system in the n(n + 1)/2 entries of a symmetric matrix, larger ones by iterations
-//! that converge quadratically: [`covariance`]. [`response`] is what [`covariance`] multiplies noise by at the most.
+//! Small orders are solved as one linear system in the n(n + 1)/2 entries of a symmetric matrix, which keeps a covariance
+//! of 0 exactly 0; larger ones are left to [`lyapunov`](super::lyapunov). [`response`] is what [`covariance`] multiplies
+//! noise by at the most, and takes the whole system.
 //! Neither looks whether A is stable: that is the caller's, as the equations have solutions without it.
 
-use super::dense::{inverse_unless, product, transposed};
+use super::dense::{frobenius, inverse_unless, product, transposed};
 use super::eigen::largest_singular;
 use super::exponential::Flow;
+use super::lyapunov::{lyapunov, stein};
+use super::solve::unit_of;
 
 /// Which equation.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -21,14 +24,13 @@ pub enum Time {
 /// Up to this order the system is written out: 78 unknowns.
 const WRITTEN_OUT: usize = 12;
 
-/// Steps of an iteration that squares its error: rates 2⁶⁰ apart.
-const MOST_STEPS: usize = 64;
+/// How nearly the equations are to hold, relative to the noise: half of the digits.
+const HOLDS: f64 = 1e-8;
 
 /// C for Q = diag(noise), for a stable matrix of order `n`, row by row.
 ///
-/// In the unit of Q times time (for a map, of Q). Beyond order 12 by the matrix sign function (Roberts 1980), for a map by
-/// doubling (Smith 1968), once refined. `None` where an entry is not finite, the system is singular, the iteration does not
-/// settle, or `stop` says so.
+/// In the unit of Q times time (for a map, of Q). `None` where an entry is not finite, the system is singular, `stop` says
+/// so, or, beyond order 12, the equations cannot be made to hold: rates lie further apart than f64 has digits.
 ///
 /// # Panics
 /// If there are not n² entries and n intensities.
@@ -43,10 +45,38 @@ pub fn covariance(entries: &[f64], n: usize, noise: &[f64], time: Time, stop: &d
         let lifted = Lifted::new(&flow, time, stop)?;
         lifted.unpacked(&lifted.times(&lifted.packed(&q)))
     } else {
-        refined(&flow.balanced, n, &q, time, stop)?
+        refined(&flow.balanced, n, &q, time)?
     };
     let c: Vec<f64> = (0..n * n).map(|k| balanced[k] * flow.scale[k / n] * flow.scale[k % n]).collect();
     c.iter().all(|x| x.is_finite()).then_some(c)
+}
+
+/// Solved, and once more for what is left of the noise.
+fn refined(a: &[f64], n: usize, q: &[f64], time: Time) -> Option<Vec<f64>> {
+    let mut c = solved(a, n, q, time)?;
+    let left = beyond(q, &noise_of(a, n, &c, time));
+    c.iter_mut().zip(solved(a, n, &left, time)?).for_each(|(c, more)| *c += more);
+    let off = beyond(q, &noise_of(a, n, &c, time));
+    (frobenius(&off) <= HOLDS * frobenius(q)).then_some(c)
+}
+
+/// Q less what was found to be made of it.
+fn beyond(q: &[f64], found: &[f64]) -> Vec<f64> {
+    q.iter().zip(found).map(|(q, found)| q - found).collect()
+}
+
+/// C of a balanced matrix for any symmetric Q. The equations of [`lyapunov`] have Aᵀ where these have A.
+fn solved(a: &[f64], n: usize, q: &[f64], time: Time) -> Option<Vec<f64>> {
+    let adjoint = transposed(a, n);
+    match time {
+        // Of entries near 1, as that takes them: the unit of time is free.
+        Time::Runs => {
+            let unit = unit_of(a.iter().fold(0.0, |largest, a| largest.max(a.abs())));
+            let [adjoint, q] = [&adjoint[..], q].map(|x| x.iter().map(|x| x * unit).collect::<Vec<f64>>());
+            lyapunov(&adjoint, &q, n)
+        }
+        Time::Steps => stein(&adjoint, q, n),
+    }
 }
 
 /// The largest ‖C‖ that noise of ‖Q‖ = 1 gives, both in the norm of Frobenius: ‖(A⊗I + I⊗A)⁻¹‖₂, for a map
@@ -128,56 +158,6 @@ fn noise_of(a: &[f64], n: usize, c: &[f64], time: Time) -> Vec<f64> {
             c.iter().zip(&twice).map(|(c, x)| c - x).collect()
         }
     }
-}
-
-/// Solved, and once more for what is left of the noise.
-fn refined(a: &[f64], n: usize, q: &[f64], time: Time, stop: &dyn Fn() -> bool) -> Option<Vec<f64>> {
-    let solve = |q: &[f64]| match time {
-        Time::Runs => by_sign(a, n, q, stop),
-        Time::Steps => by_doubling(a, n, q, stop),
-    };
-    let mut c = solve(q)?;
-    let left: Vec<f64> = q.iter().zip(noise_of(a, n, &c, time)).map(|(q, found)| q - found).collect();
-    c.iter_mut().zip(solve(&left)?).for_each(|(c, more)| *c += more);
-    Some(c)
-}
-
-/// A ← (sA + (sA)⁻¹)/2 goes to −I, and Q ← (sQ + A⁻¹QA⁻ᵀ/s)/2 to 2C; s makes the two norms alike.
-fn by_sign(a: &[f64], n: usize, q: &[f64], stop: &dyn Fn() -> bool) -> Option<Vec<f64>> {
-    let (mut a, mut q) = (a.to_vec(), q.to_vec());
-    for _ in 0..MOST_STEPS {
-        let inverse = inverse_unless(&a, n, stop)?;
-        let size = |x: &[f64]| x.iter().map(|x| x * x).sum::<f64>().sqrt();
-        let far = (0..n * n).map(|k| a[k] + f64::from(u8::from(k % (n + 1) == 0))).map(|x| x * x).sum::<f64>().sqrt();
-        // Near the end scaling would only disturb the convergence.
-        let s = if far < 0.1 { 1.0 } else { (size(&inverse) / size(&a)).sqrt() };
-        let through = product(&product(&inverse, &q, n), &transposed(&inverse, n), n);
-        a.iter_mut().zip(&inverse).for_each(|(a, inverse)| *a = f64::midpoint(s * *a, inverse / s));
-        q.iter_mut().zip(&through).for_each(|(q, through)| *q = f64::midpoint(s * *q, through / s));
-        if far < 1e-9 {
-            return Some(q.iter().map(|q| q / 2.0).collect());
-        }
-    }
-    None
-}
-
-/// C ← C + ACAᵀ, A ← A².
-fn by_doubling(a: &[f64], n: usize, q: &[f64], stop: &dyn Fn() -> bool) -> Option<Vec<f64>> {
-    let (mut a, mut c) = (a.to_vec(), q.to_vec());
-    for _ in 0..MOST_STEPS {
-        let more = product(&product(&a, &c, n), &transposed(&a, n), n);
-        let size = |x: &[f64]| x.iter().fold(0.0f64, |largest, x| largest.max(x.abs()));
-        let is_settled = size(&more) <= f64::EPSILON * f64::EPSILON * size(&c);
-        c.iter_mut().zip(&more).for_each(|(c, more)| *c += more);
-        if is_settled {
-            return Some(c);
-        }
-        if stop() || !size(&c).is_finite() {
-            return None;
-        }
-        a = product(&a, &a, n);
-    }
-    None
 }
 
 #[cfg(test)]

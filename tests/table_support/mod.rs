@@ -140,6 +140,7 @@ fn present_fleet(model: &Model) -> Solved {
             (Destination::Loss(vec![SpeciesId(1)]), 0.005),
         ],
         starts: 200,
+        broken_off: false,
     };
     Solved {
         values: vec![0.9, 1.0],

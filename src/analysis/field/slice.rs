@@ -44,7 +44,7 @@ impl Slice {
         let (held, from) = match selected(subject.model, found, assessment) {
             _ if subject.species() <= 2 => (lower, Held::Nothing),
             Some(index) => (found.list[index].state.clone(), Held::Equilibrium(index)),
-            None => today(subject.model).map_or((lower, Held::Lower), |now| (now, Held::Now)),
+            None => subject.model.today().map_or((lower, Held::Lower), |now| (now, Held::Now)),
         };
         Self { x, y, held, from }
     }
@@ -71,12 +71,6 @@ impl Slice {
         let of = |species: usize| state.get(species).copied().unwrap_or(0.0);
         [of(self.x), self.y.map_or(0.0, of)]
     }
-}
-
-/// Today's stock of every species; `None` unless each is known.
-pub(super) fn today(model: &Model) -> Option<Vec<f64>> {
-    let of = |i: usize| model.now.iter().find(|survey| survey.species.0 == i).map(|survey| survey.value);
-    (0..model.species.len()).map(of).collect()
 }
 
 fn selected(model: &Model, found: &Equilibria, assessment: &Assessment) -> Option<usize> {

@@ -6,6 +6,7 @@
 
 use super::place::{Border, Place, Shape, Side};
 use super::planar::{Planar, axis_sides};
+use crate::num::dense::block;
 use crate::num::eigen::strongly_connected;
 use crate::num::interval::Interval;
 use crate::num::verified::{self, Disc};
@@ -29,10 +30,8 @@ impl Proof {
     /// Of a matrix of order `n` between bounds, row by row.
     pub(super) fn of(matrix: &[Interval], n: usize, border: Border) -> Self {
         let mut proof = Self { places: Some(Vec::new()), ..Self::default() };
-        for block in strongly_connected(n, |i, j| matrix[i * n + j] != Interval::ZERO) {
-            let part: Vec<Interval> =
-                block.iter().flat_map(|&i| block.iter().map(move |&j| matrix[i * n + j])).collect();
-            proof.add_block(&part, block.len(), border);
+        for part in strongly_connected(n, |i, j| matrix[i * n + j] != Interval::ZERO) {
+            proof.add_block(&block(matrix, n, &part), part.len(), border);
         }
         proof
     }

@@ -11,6 +11,9 @@ use crate::num::quadratic;
 use super::face::{Face, Field};
 use super::shells::Shells;
 
+/// Beyond so many coordinates the equation for V alone, which cannot be broken off, takes a second. Paths then end at rest.
+const LARGEST: usize = 200;
+
 /// What a face's equations are: a flow or a map.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
 pub(super) enum Motion {
@@ -34,12 +37,16 @@ pub(super) struct Basin {
     level: f64,
 }
 
-/// The regions of all equilibria of a face that are stable on it.
-pub(super) fn basins(face: &Face, list: &[Equilibrium], motion: Motion) -> Vec<Basin> {
+/// The regions of all equilibria of a face that are stable on it; without those that are not done when `stop`, asked once a
+/// shell, says so, and for large communities none.
+pub(super) fn basins(face: &Face, list: &[Equilibrium], motion: Motion, stop: &dyn Fn() -> bool) -> Vec<Basin> {
+    if face.len() > LARGEST {
+        return Vec::new();
+    }
     let mut field = face.field();
     let on_face = |e: &Equilibrium| (0..face.species).all(|i| face.present.contains(&i) || !e.has(i));
     let candidates = list.iter().enumerate().filter(|(_, e)| on_face(e));
-    candidates.filter_map(|(index, e)| Basin::new(face, &mut field, index, &e.state, motion)).collect()
+    candidates.filter_map(|(index, e)| Basin::new(face, &mut field, index, &e.state, motion, stop)).collect()
 }
 
 /// Units in which no absent species moves another faster than anything moves by itself: a box may be far larger than what
@@ -58,7 +65,17 @@ fn balanced(slopes: &[f64], centre: &[f64], mut unit: Vec<f64>) -> Vec<f64> {
 }
 
 impl Basin {
-    fn new(face: &Face, field: &mut Field<'_>, equilibrium: usize, state: &[f64], motion: Motion) -> Option<Self> {
+    fn new(
+        face: &Face,
+        field: &mut Field<'_>,
+        equilibrium: usize,
+        state: &[f64],
+        motion: Motion,
+        stop: &dyn Fn() -> bool,
+    ) -> Option<Self> {
+        if stop() {
+            return None;
+        }
         let n = face.len();
         let centre: Vec<f64> = face.present.iter().map(|&i| state[i]).collect();
         let unit: Vec<f64> = centre.iter().zip(&face.scale).map(|(&x, &s)| if x > 0.0 { x } else { s }).collect();
@@ -83,7 +100,7 @@ impl Basin {
         // Positive definite only where the equilibrium is stable (Lyapunov 1892).
         let root = quadratic::root(&p, n)?;
         let mut basin = Self { equilibrium, centre, unit, inverse: inverse(&p, n)?, p, level: 0.0 };
-        basin.level = Shells::new(&basin, face, &inverse(&root, n)?, motion).widest()?;
+        basin.level = Shells::new(&basin, face, &inverse(&root, n)?, motion).widest(stop)?;
         Some(basin)
     }
 

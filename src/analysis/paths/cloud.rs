@@ -15,12 +15,6 @@ const SEED: u64 = 20;
 const GRID: usize = 64;
 const MOST_TRIES: usize = 200;
 
-/// The survey's values; `None` unless every species has one.
-pub(super) fn middle(model: &Model) -> Option<Vec<f64>> {
-    let value = |i: usize| model.now.iter().find(|survey| survey.species.0 == i).map(|survey| survey.value);
-    (0..model.species.len()).map(value).collect()
-}
-
 /// `count` starts; none where the survey gives no spread.
 pub(super) fn starts(model: &Model, middle: &[f64], count: usize) -> Vec<Vec<f64>> {
     let spread = |cv: f64| elementary::ln(1.0 + cv * cv).sqrt();

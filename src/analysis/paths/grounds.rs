@@ -67,7 +67,7 @@ impl Ground {
         let face = Face::new(subject, present)?;
         let motion = if subject.step().is_some() { Motion::Map } else { Motion::Flow };
         // Where nobody is left there is no path.
-        let basins = if face.len() == 0 { Vec::new() } else { basins(&face, known.list, motion) };
+        let basins = if face.len() == 0 { Vec::new() } else { basins(&face, known.list, motion, known.stop) };
         Some(Self { face, basins })
     }
 }

@@ -72,6 +72,8 @@ pub struct FromNow {
     pub shares: Vec<(Destination, f64)>,
     /// How many starts the shares rest on.
     pub starts: usize,
+    /// Whether the budget ended before the paths did: there are no shares then, and the destination may be for want of time.
+    pub broken_off: bool,
 }
 
 /// What paths of one scenario go to. Equations and regions are made when they are first needed, and kept.

@@ -42,7 +42,7 @@ impl Paths<'_> {
     /// in a region from which no path was seen to leave, for a cycle once it has come close to one that some path was seen to
     /// settle on. Once a species is lost, who else is lost is looked for over a hundred steps. Numerical; the number of steps is bounded, and `stop` is asked now and then.
     pub fn from_now(&mut self, subject: &mut Subject<'_>) -> Option<FromNow> {
-        let middle = cloud::middle(subject.model)?;
+        let middle = subject.model.today()?;
         let ending = self.go(subject, &middle);
         let count = match subject.species() {
             _ if ending.stiff => STARTS_IF_STIFF,
@@ -59,9 +59,13 @@ impl Paths<'_> {
             let there = tally.paths.grounds.present(subject, &middle);
             tally.together(subject, &starts, &there, &[]);
         }
+        let shares = tally.shares(starts.len());
+        // Shares of what was reached in the time there was would be another thing, and another one every time.
+        let broken_off = (self.grounds.known.stop)();
         Some(FromNow {
-            shares: tally.shares(starts.len()),
-            starts: starts.len(),
+            shares: if broken_off { Vec::new() } else { shares },
+            starts: if broken_off { 0 } else { starts.len() },
+            broken_off,
             reaches: ending.destination,
             time: ending.time,
             lowest: ending.lowest,

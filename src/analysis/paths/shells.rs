@@ -45,11 +45,15 @@ impl<'b> Shells<'b> {
         Self { basin, face, root, motion, field, source, direction, z, pull, next }
     }
 
-    /// The level of the last shell before one in which V does not fall everywhere.
-    pub(super) fn widest(mut self) -> Option<f64> {
+    /// The level of the last shell before one in which V does not fall everywhere; `None` where `stop`, asked once a shell,
+    /// says so.
+    pub(super) fn widest(mut self, stop: &dyn Fn() -> bool) -> Option<f64> {
         let points = (POINTS * self.face.len()).min(MOST_POINTS);
         let (mut radius, mut good) = (FIRST_SHELL, None);
         for _ in 0..SHELLS {
+            if stop() {
+                return None;
+            }
             for first in (0..points).step_by(WIDTH) {
                 if !self.falls(radius, WIDTH.min(points - first)) {
                     return good;

@@ -6,7 +6,7 @@
 
 mod sharpen;
 
-use super::dense::{norm_one, product};
+use super::dense::{frobenius, identity, norm_one, product};
 use super::eigen::{self, largest_singular};
 use super::exponential::{Flow, doubled, later, with_identity};
 
@@ -110,11 +110,6 @@ fn level_of(k: usize) -> i32 {
     i32::try_from(k).unwrap_or(i32::MAX)
 }
 
-/// √Σx².
-fn frobenius(x: &[f64]) -> f64 {
-    x.iter().map(|x| x * x).sum::<f64>().sqrt()
-}
-
 /// exp(Ât) at one time.
 #[derive(Clone, Debug)]
 struct Moment {
@@ -159,7 +154,7 @@ impl<'f> Search<'f> {
     fn new(flow: &'f Flow, entries: &'f [f64], growth: f64) -> Option<Self> {
         let n = flow.order;
         let first = flow.short();
-        let mut best = Moment { time: 0.0, matrix: with_identity(&vec![0.0; n * n], n), size: 1.0 };
+        let mut best = Moment { time: 0.0, matrix: identity(n), size: 1.0 };
         let mut doublings = vec![flow.beyond_identity(first)];
         for k in 0..MOST_DOUBLINGS {
             let matrix = with_identity(&doublings[k], n);
@@ -289,7 +284,7 @@ impl<'f> Search<'f> {
 
     fn origin(&self) -> Moment {
         let n = self.flow.order;
-        Moment { time: 0.0, matrix: with_identity(&vec![0.0; n * n], n), size: 1.0 }
+        Moment { time: 0.0, matrix: identity(n), size: 1.0 }
     }
 
     /// Some time after a moment.

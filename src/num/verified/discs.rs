@@ -8,9 +8,9 @@
 
 use nalgebra::Complex;
 
-use super::product::{Ball, gamma, inflate, moduli_times, times, underflow};
+use super::product::{Ball, gamma, inflate, moduli_times, underflow};
 use super::{Block, Border, Counts, small};
-use crate::num::dense::inverse;
+use crate::num::dense::{inverse, product};
 use crate::num::eigen::{balanced, spectrum};
 use crate::num::interval::Interval;
 
@@ -144,7 +144,7 @@ impl Basis {
         let n = self.n;
         let weights: Vec<f64> =
             self.values.iter().map(|value| if value.im == 0.0 { 1.0 } else { ROOT_TWO_UP }).collect();
-        let mut residual = times(&a.middle, &self.v, n);
+        let mut residual = product(&a.middle, &self.v, n);
         residual.iter_mut().zip(self.v_times_d()).for_each(|(x, y)| *x -= y);
         // What the residual may be off in the weighted sum of a row.
         let spread = moduli_times(&self.v, &weights);
@@ -161,7 +161,7 @@ impl Basis {
             })
             .collect();
         let carried = moduli_times(&self.inverse, &off);
-        let product = moduli_times(&times(&self.inverse, &residual, n), &weights);
+        let product = moduli_times(&product(&self.inverse, &residual, n), &weights);
         let bounds: Vec<f64> =
             carried.iter().zip(&product).map(|(x, y)| (x + y + underflow(n * n)) * inflate(8)).collect();
         self.through_inverse(&bounds)
@@ -171,7 +171,7 @@ impl Basis {
     /// |I − R V|.
     fn through_inverse(&self, bounds: &[f64]) -> Option<Vec<f64>> {
         let n = self.n;
-        let mut defect = times(&self.inverse, &self.v, n);
+        let mut defect = product(&self.inverse, &self.v, n);
         (0..n).for_each(|i| defect[i * n + i] -= 1.0);
         let ones = vec![1.0; n];
         let rounding = moduli_times(&self.inverse, &moduli_times(&self.v, &ones));

@@ -6,8 +6,9 @@
 //! Stein's equation for the identity, of which one only needs to prove that the form is within 1 of it, in the norm of row
 //! sums; the inertia of P comes from Sylvester's law, by a congruence that makes it nearly a diagonal of ±1.
 
-use super::product::{Ball, gamma, inflate, moduli_times, times, transposed, underflow};
+use super::product::{Ball, gamma, inflate, moduli_times, underflow};
 use super::{Block, Border, Counts};
+use crate::num::dense::{identity, product, transposed};
 use crate::num::eigen::{balanced, symmetric_spectrum};
 use crate::num::lyapunov::{lyapunov, stein};
 
@@ -35,13 +36,9 @@ pub(super) fn counts(block: &Block, border: Border) -> Option<Counts> {
     proved.then(|| inertia(&p, n)).flatten()
 }
 
-fn identity(n: usize) -> Vec<f64> {
-    (0..n * n).map(|k| if k / n == k % n { 1.0 } else { 0.0 }).collect()
-}
-
 /// Whether Aᵀ P + P A is proved to be within 1 of −I for every A.
 fn falls(p: &[f64], a: &Ball, n: usize) -> bool {
-    let product = times(p, &a.middle, n);
+    let product = product(p, &a.middle, n);
     let ones = vec![1.0; n];
     let mut off = vec![0.0; n];
     // Row sums of |P||A| and of its transpose, with what rounding and the radius may add.
@@ -93,9 +90,9 @@ fn inertia(p: &[f64], n: usize) -> Option<Counts> {
 /// Xᵀ P X at the middle of X, as rounding leaves it, and bounds on the row sums of what it may be off for any X.
 fn congruence(p: &[f64], x: &Ball, n: usize) -> (Vec<f64>, Vec<f64>) {
     let ones = vec![1.0; n];
-    let right = times(p, &x.middle, n);
+    let right = product(p, &x.middle, n);
     let [x_t, r_t] = [&x.middle, &x.radius].map(|matrix| transposed(matrix, n));
-    let form = times(&x_t, &right, n);
+    let form = product(&x_t, &right, n);
     let [x_sums, r_sums] = [&x.middle, &x.radius].map(|matrix| moduli_times(matrix, &ones));
     let [inner, spread] = [&x_sums, &r_sums].map(|sums| moduli_times(p, sums));
     let right_sums = moduli_times(&right, &ones);

@@ -1,7 +1,7 @@
 //! What is proved of the eigenvalues of every matrix between bounds: on which side of the imaginary axis or of the unit
-//! circle how many lie, and whether the leading ones are real.
+//! circle how many lie, and in which discs.
 //!
-//! [`half_plane`], [`unit_circle`] and [`leading`] are the ways in. The matrix is divided along entries that are exactly 0;
+//! [`half_plane`], [`unit_circle`] and [`discs`] are the ways in. The matrix is divided along entries that are exactly 0;
 //! a block of order one to three is judged by its characteristic polynomial (`small`), any block by discs around approximate
 //! eigenvalues (`discs`), and what is defective or nearly so by the inertia of a quadratic form (`inertia`). Nothing here says "critical": a proof that an
 //! eigenvalue lies *on* the border cannot come from bounds.
@@ -15,6 +15,7 @@ use std::ops::Add;
 
 use nalgebra::Complex;
 
+use super::dense::block;
 use super::eigen::strongly_connected;
 use super::interval::Interval;
 pub use discs::Disc;
@@ -131,51 +132,8 @@ fn blocks(matrix: &[Interval], n: usize) -> Option<Vec<Block>> {
         return None;
     }
     let parts = strongly_connected(n, |i, j| matrix[i * n + j] != Interval::ZERO);
-    let block = |part: &Vec<usize>| Block {
-        entries: part.iter().flat_map(|&i| part.iter().map(move |&j| matrix[i * n + j])).collect(),
-        n: part.len(),
-    };
+    let block = |part: &Vec<usize>| Block { entries: block(matrix, n, part), n: part.len() };
     Some(parts.iter().map(block).collect())
-}
-
-/// What is proved of the leading eigenvalue.
-#[derive(Clone, Copy, Debug, PartialEq)]
-pub enum Leading {
-    /// Real and simple in every matrix, and ahead of all others.
-    Real(Interval),
-    /// A complex pair in every matrix, and ahead of all others: real part, and the imaginary part that is positive.
-    Pair {
-        /// Real part.
-        re: Interval,
-        /// The positive imaginary part.
-        im: Interval,
-    },
-}
-
-/// Whether the leading eigenvalues of every matrix in `matrix` (row by row, of order `n`) are one real or a complex pair;
-/// `None` where that is not proved, where it differs between the matrices, or where there is none.
-///
-/// # Panics
-/// If there are not n² entries.
-pub fn leading(matrix: &[Interval], n: usize, border: Border) -> Option<Leading> {
-    let discs = discs(matrix, n)?;
-    let upper = discs.iter().filter(|disc| disc.centre.im >= 0.0);
-    let first = upper.max_by(|a, b| border.rank(a).hi().total_cmp(&border.rank(b).hi()))?;
-    let pair = first.centre.im != 0.0;
-    let lowest = border.rank(first).lo();
-    let partner = |disc: &Disc| disc.centre == first.centre.conj() && disc.radius == first.radius;
-    let ahead = |disc: &&Disc| border.rank(disc).hi() < lowest;
-    let others = discs.len() - discs.iter().filter(ahead).count();
-    let alone = first.held == 1 && others == if pair { 2 } else { 1 };
-    if !alone {
-        return None;
-    }
-    let re = Interval::point(first.centre.re) + first.reach();
-    if !pair {
-        return Some(Leading::Real(re));
-    }
-    let im = Interval::point(first.centre.im.abs()) + first.reach();
-    (im.lo() > 0.0 && discs.iter().filter(|disc| partner(disc)).count() == 1).then_some(Leading::Pair { re, im })
 }
 
 #[cfg(test)]

@@ -1,10 +1,9 @@
-//! Products of matrices in ordinary arithmetic, with bounds on all that rounding can have done to their rows.
+//! Bounds on all that rounding can have done to the rows of products of matrices in ordinary arithmetic.
 //!
 //! A computed sum of n products differs from the exact one by at most γ_n = n u/(1 − n u) times the sum of their moduli,
 //! in whatever order it is added (Higham 2002, §3.1), but for underflow. Row sums of moduli of products need no product of
 //! matrices, only of matrices and vectors.
 
-use crate::num::dense::add_multiple;
 use crate::num::interval::Interval;
 
 /// A matrix between bounds as middle and radius, row by row.
@@ -44,27 +43,9 @@ pub(super) fn underflow(terms: usize) -> f64 {
     (terms + 1) as f64 * f64::MIN_POSITIVE
 }
 
-/// A B, as rounding leaves it.
-pub(super) fn times(a: &[f64], b: &[f64], n: usize) -> Vec<f64> {
-    let mut product = vec![0.0; n * n];
-    for (row, sums) in a.chunks_exact(n).zip(product.chunks_exact_mut(n)) {
-        for (&x, other) in row.iter().zip(b.chunks_exact(n)) {
-            if x != 0.0 {
-                add_multiple(sums, x, other);
-            }
-        }
-    }
-    product
-}
-
 /// |A| x for x ≥ 0, rounded up.
 pub(super) fn moduli_times(a: &[f64], x: &[f64]) -> Vec<f64> {
     let n = x.len();
     let sum = |row: &[f64]| row.iter().zip(x).map(|(a, x)| a.abs() * x).sum::<f64>() * inflate(n) + underflow(n);
     a.chunks_exact(n).map(sum).collect()
-}
-
-/// Aᵀ.
-pub(super) fn transposed(a: &[f64], n: usize) -> Vec<f64> {
-    (0..n * n).map(|k| a[k % n * n + k / n]).collect()
 }

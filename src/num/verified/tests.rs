@@ -1,6 +1,7 @@
 //! Proofs against eigenvalues known by hand.
 
 use super::*;
+use crate::num::dense::identity;
 use crate::num::random::Source;
 
 fn points(entries: &[f64]) -> Vec<Interval> {
@@ -42,10 +43,6 @@ fn unimodular(n: usize, source: &mut Source) -> [Vec<f64>; 2] {
         }
     }
     [forth, back]
-}
-
-fn identity(n: usize) -> Vec<f64> {
-    (0..n * n).map(|k| if k / n == k % n { 1.0 } else { 0.0 }).collect()
 }
 
 /// Sums of products of dyadic numbers of few bits: exact, and an error here is an error of the test.
@@ -178,34 +175,4 @@ fn every_matrix_between_the_bounds_counts() {
     assert_eq!(unit_circle(&[Interval::new(-1.0, 0.5)], 1), Some(Counts::default()));
     assert_eq!(half_plane(&[Interval::ENTIRE], 1), None);
     assert_eq!(unit_circle(&[Interval::EMPTY], 1), None);
-}
-
-#[test]
-fn leading_eigenvalues_by_hand() {
-    let check = |entries: &[f64], n: usize, border: Border, expected: Option<[f64; 2]>| {
-        let found = leading(&points(entries), n, border);
-        let right = match (found, expected) {
-            (Some(Leading::Real(x)), Some([re, im])) => im == 0.0 && x.contains(re) && x.width() < 1e-12,
-            (Some(Leading::Pair { re, im: y }), Some([x, im])) => re.contains(x) && y.contains(im) && y.width() < 1e-12,
-            (found, expected) => found.is_none() && expected.is_none(),
-        };
-        assert!(right, "{entries:?}, {border:?}: {found:?}");
-    };
-    check(&[], 0, Border::Axis, None);
-    check(&[-2.0], 1, Border::Axis, Some([-2.0, 0.0]));
-    // −1 ± 2i, behind −1/2 or before it.
-    let coupled = |last: f64| [-1.0, 2.0, 1.0, -2.0, -1.0, 1.0, 0.0, 0.0, last];
-    check(&coupled(-0.5), 3, Border::Axis, Some([-0.5, 0.0]));
-    check(&coupled(-1.5), 3, Border::Axis, Some([-1.0, 2.0]));
-    check(&coupled(-0.5), 3, Border::Circle, Some([-1.0, 2.0]));
-    check(&coupled(-2.5), 3, Border::Circle, Some([-2.5, 0.0]));
-    // As far ahead as each other.
-    check(&coupled(-1.0), 3, Border::Axis, None);
-    check(&[0.0, 4.0, 9.0, 0.0], 2, Border::Circle, None);
-    check(&[0.0, 4.0, 9.0, 0.0], 2, Border::Axis, Some([6.0, 0.0]));
-    // Node or spiral by 2^−50, and neither.
-    let off = (-50f64).exp2();
-    check(&[-3.0, 1.0 + off, -1.0, -1.0], 2, Border::Axis, Some([-2.0, off.sqrt()]));
-    check(&[-3.0, 1.0 - off, -1.0, -1.0], 2, Border::Axis, Some([-2.0 + off.sqrt(), 0.0]));
-    check(&[-3.0, 1.0, -1.0, -1.0], 2, Border::Axis, None);
 }

@@ -74,6 +74,7 @@ pub(super) fn from_now(place: Place<'_>, from: &FromNow) -> Value {
         "lowest": state(place.table, &from.lowest),
         "shares": shares.collect::<Map<_, _>>(),
         "starts": from.starts,
+        "broken_off": from.broken_off,
     });
     if let (Value::Object(keys), Destination::Cycle(cycle)) = (&mut keys, &from.reaches) {
         keys.insert("cycle".to_owned(), Value::Object(cycle_keys(place, cycle)));
@@ -102,6 +103,9 @@ pub(super) fn from_now_in_words(place: Place<'_>, from: &FromNow) -> String {
 }
 
 fn shares_in_words(place: Place<'_>, from: &FromNow) -> String {
+    if from.broken_off {
+        return " The budget ended before all paths were followed: a larger --budget may tell more.".to_owned();
+    }
     if from.shares.is_empty() {
         return String::new();
     }
