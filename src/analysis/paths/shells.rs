@@ -97,7 +97,7 @@ impl<'b> Shells<'b> {
         // z = L⁻ᵀ u has V = |u|².
         product(&self.root, &self.direction, &mut self.z);
         for (z, _) in self.z.iter_mut().zip(&self.basin.centre).filter(|(_, centre)| **centre == 0.0) {
-            z.iter_mut().for_each(|z| *z = z.abs());
+            *z = z.map(f64::abs);
         }
         product(&self.basin.p, &self.z, &mut self.pull);
         let mut stretch = dot(&self.z, &self.pull);
