@@ -14,7 +14,7 @@ const BACKWARD: f64 = 4.0;
 /// Rounds of balancing; each brings rows and columns nearer to one size.
 const BALANCINGS: usize = 4;
 
-/// What an eigenvalue may be off by, to first order: |w|ᵀ E |v| / |wᴴ v| with E the radii of the entries and the backward
+/// What an eigenvalue may be off by, to first order: |w|ᵀ E |v| / |wᴴ v| with E what the entries may be off and the backward
 /// error (Wilkinson 1965, ch. 2). Independent of the units of the species.
 ///
 /// A defective eigenvalue has no such bound; none is taken larger than the square root that a double one has.
@@ -24,7 +24,8 @@ pub(super) fn errors(numbers: &[f64], enclosure: &[Interval], spectrum: &Spectru
     let size = |i: usize, j: usize| numbers[i * n + j].abs() * scale[j] / scale[i];
     let largest = (0..n * n).map(|k| size(k / n, k % n)).fold(0.0, f64::max);
     let rounding = BACKWARD * n as f64 * f64::EPSILON;
-    let radius = |k: usize| enclosure.get(k).map_or(0.0, |entry| entry.radius());
+    // Of the model as written, of which the numbers need not be the middle.
+    let radius = |k: usize| enclosure.get(k).map_or(0.0, |&entry| (entry - Interval::point(numbers[k])).mag());
     let uncertain = (0..n * n).map(|k| radius(k) * scale[k % n] / scale[k / n]).fold(0.0, f64::max);
     // The roots apart, for their product may overflow.
     let most = (n as f64 * (rounding * largest + uncertain)).sqrt() * largest.sqrt();
