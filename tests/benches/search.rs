@@ -19,7 +19,7 @@ use common::text::Read;
 use common::whole::Whole;
 use common::workers::Two;
 use restpoint::analysis::equilibria::{Budget, Equilibria, OneByOne, Workers};
-use restpoint::model::load::load;
+use restpoint::model::load::{Files, load};
 use restpoint::model::system::System;
 use restpoint::shell::files::read_model;
 
@@ -52,9 +52,37 @@ fn overruns() {
         print_overrun(&format!("webs of {n}"), seeds.map(|seed| overrun(&mut webs::web(n, seed).text.read(), 0)));
     }
     for n in [60, 120, 250, 500] {
-        let community = Whole::random(&mut common::Source::new(n as u64), n, [-2, 0], 40);
-        print_overrun(&format!("linear blocks of {n}"), [overrun(&mut community.text().read(), 0)].into_iter());
+        print_overrun(&format!("linear blocks of {n}"), [overrun(&mut block(n), 0)].into_iter());
     }
+}
+
+/// Tables by name.
+struct Tables(BTreeMap<&'static str, String>);
+
+impl Files for Tables {
+    fn read(&self, path: &str, _limit: usize) -> Result<Vec<u8>, String> {
+        self.0.get(path).map(|table| table.clone().into_bytes()).ok_or_else(|| format!("no table {path}"))
+    }
+}
+
+/// A community of competitors, read from tables.
+fn block(n: usize) -> Read {
+    let whole = Whole::random(&mut common::Source::new(n as u64), n, [-2, 0], 40);
+    let symbols: Vec<String> = (0..n).map(|i| format!("x{i}")).collect();
+    let line = |symbol: &str, numbers: &[i64]| {
+        let numbers: Vec<String> = numbers.iter().map(i64::to_string).collect();
+        format!("{symbol},{}\n", numbers.join(","))
+    };
+    let growth = symbols.iter().zip(whole.growth.chunks(1)).map(|(symbol, growth)| line(symbol, growth));
+    let growth = format!("symbol,growth\n{}", growth.collect::<String>());
+    let rows = symbols.iter().zip(whole.matrix.chunks(n)).map(|(symbol, row)| line(symbol, row));
+    let matrix = format!("symbol,{}\n{}", symbols.join(","), rows.collect::<String>());
+    let text = "title: many\ntime: yr\nlotka_volterra: {growth: r.csv, matrix: a.csv, upper: 1000000}\n";
+    let tables = Tables(BTreeMap::from([("r.csv", growth), ("a.csv", matrix)]));
+    let (model, _, found) = load("block.yaml", text.as_bytes(), &tables);
+    let model = model.unwrap_or_else(|| panic!("{found:?}"));
+    let system = System::new(&model, &[]).unwrap_or_else(|found| panic!("{found:?}"));
+    Read { model, system }
 }
 
 fn print_overrun(name: &str, overruns: impl Iterator<Item = f64>) {

@@ -96,12 +96,12 @@ impl<'e, 't> Bordered<'e, 't> {
     /// How the curve runs over the tube.
     pub(super) fn course(&mut self) -> Option<Course> {
         let tube = self.tube[..self.equations.n].to_vec();
-        self.course_over(&tube)
+        self.course_over(&tube, 3)
     }
 
     /// Taylor coefficients of x and μ along the curve, wherever on it in a region: with all lower ones known, F's next one
-    /// is J x_k plus what the lower give, so that each takes one more linear system with the same matrix.
-    fn course_over(&mut self, region: &[Interval]) -> Option<Course> {
+    /// is J x_k plus what the lower give, so that each takes one more linear system with the same matrix. Of μ those up to `orders`.
+    fn course_over(&mut self, region: &[Interval], orders: usize) -> Option<Course> {
         let n = self.equations.n;
         let over = self.equations.linear(region);
         let bordered = matrix(&over.slopes, &points(&self.u), &points(&self.v), Interval::ZERO);
@@ -110,7 +110,7 @@ impl<'e, 't> Bordered<'e, 't> {
         let line = region.iter().zip(&direction).map(|(x, direction)| Jet::line(*x, *direction));
         let mut line: Vec<Jet<Interval>> = line.collect();
         let mut run = self.tape.start(&self.parameters);
-        for order in 2..=3 {
+        for order in 2..=orders {
             let domain = run.at(&line);
             if !domain.defined {
                 return None;
@@ -146,14 +146,14 @@ impl<'e, 't> Bordered<'e, 't> {
         self.enclose(&x, mu, t)
     }
 
-    /// Taylor coefficients of μ around one t, from μ itself.
-    pub(super) fn taylor_at(&mut self, t: f64) -> Option<[Interval; 4]> {
+    /// Taylor coefficients of μ around one t, from μ itself up to order `orders`; nothing is known of those above.
+    pub(super) fn taylor_at(&mut self, t: f64, orders: usize) -> Option<[Interval; 4]> {
         let (x, value) = self.at(t)?;
         let over = self.equations.linear(&x);
         let centre: Vec<f64> = over.slopes.iter().map(|slope| slope.mid()).collect();
         let here = inverse(&matrix(&centre, &self.u, &self.v, 0.0), self.equations.n + 1)?;
         let at_centre = std::mem::replace(&mut self.inverse, here);
-        let course = self.course_over(&x);
+        let course = self.course_over(&x, orders);
         self.inverse = at_centre;
         let [slope, bend, twist] = course?.mu;
         Some([value, slope, bend, twist])

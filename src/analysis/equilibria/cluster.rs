@@ -104,7 +104,7 @@ impl Count<'_, '_> {
         let leading = self.course.mu[k - 1].mig();
         let (mut near, mut centre) = (t, t.mid());
         for _ in 0..CENTRINGS {
-            let Some(c) = self.bordered.taylor_at(centre) else { break };
+            let Some(c) = self.bordered.taylor_at(centre, k) else { break };
             // The powers are rounded; the margin covers that.
             let reach =
                 (1..=k).map(|j| (c[k - j].mag() / leading).powf(1.0 / j as f64)).fold(0.0, f64::max) * 2.000_001;
@@ -143,7 +143,7 @@ impl Count<'_, '_> {
     /// Both ends lie where the curve opens to: it may dip through 0 twice, once, or not at all.
     fn both_outward(&mut self, t: Interval, outward: bool) -> Option<Heap> {
         let turn = self.turning_point(t);
-        let [value, slope, ..] = self.bordered.taylor_at(turn)?;
+        let [value, slope, ..] = self.bordered.taylor_at(turn, 1)?;
         if sign(value) == Some(!outward) {
             let sides = [Interval::new(t.lo(), turn), Interval::new(turn, t.hi())];
             let first = self.root(t.lo(), outward, turn, sides[0])?;
@@ -164,10 +164,10 @@ impl Count<'_, '_> {
     fn turning_point(&mut self, t: Interval) -> f64 {
         let (mut low, mut high) = (t.lo(), t.hi());
         let rising = |taylor: Option<[Interval; 4]>| taylor.map(|[_, slope, ..]| slope.mid() > 0.0);
-        let start = rising(self.bordered.taylor_at(low));
+        let start = rising(self.bordered.taylor_at(low, 1));
         for _ in 0..HALVINGS {
             let middle = low + (high - low) / 2.0;
-            match rising(self.bordered.taylor_at(middle)) {
+            match rising(self.bordered.taylor_at(middle, 1)) {
                 None => break,
                 found if found == start => low = middle,
                 _ => high = middle,
