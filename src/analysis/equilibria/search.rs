@@ -172,7 +172,9 @@ impl<'t> Search<'t> {
             Heap::Undecided => return false,
             Heap::Empty => None,
             Heap::Roots(roots) => {
-                roots.into_iter().for_each(|root| self.keep(root));
+                for root in roots {
+                    self.keep(root);
+                }
                 None
             }
             Heap::Close(close) if !self.is_smallest(&close.within) => Some(close.within),

@@ -90,7 +90,7 @@ impl Equations<'_> {
         let mut x = start.to_vec();
         let size = |i: usize| (0..n).map(|j| over[i * n + j].mag() * self.scale[j]).fold(f64::MIN_POSITIVE, f64::max);
         let rows: Vec<f64> = (0..n).map(|i| 1.0 / size(i)).collect();
-        if rows.iter().any(|row| *row == 0.0) {
+        if rows.contains(&0.0) {
             return None;
         }
         for _ in 0..STEPS {
