@@ -1,6 +1,6 @@
 //! Where paths go: what an unstable state gives way to, and where today's stocks lead. Numerical results, never proofs.
 //!
-//! [`settles`] and [`from_now`] are the ways in, [`follow`] records a path for drawing. `face` has the equations in the
+//! [`settles`] and [`from_now`] are the ways in, [`follow()`] records a path for drawing. `face` has the equations in the
 //! coordinates in which they are followed, `walk` takes steps until someone is lost, `trail` keeps them; `settle` and
 //! `maps` go on until it is clear where a path ends: in a `basin`, or on a turn that `returns`, which `cycle` measures.
 //! `cloud` draws starts from the survey, `flock` follows them all at once.
