@@ -1,5 +1,4 @@
 //! Nothing is proved that hangs on how the decimals of a model file were rounded to f64.
-#![expect(clippy::unwrap_used, reason = "a test fails by panicking")]
 
 mod common;
 

@@ -249,7 +249,7 @@ fn each_kind_is_drawn_as_the_table_has_it() {
             let text = model.text(seen(79, 25), style);
             let spiral = if look.spirals { '~' } else { ' ' };
             assert!(
-                text.contains(&format!("\n  {glyph}{spiral}  E1: x = 5.000, y = 5.000; {kind}; proved\n")),
+                text.contains(&format!("\n  {glyph}{spiral}  E1: x = 5.000, y = 5.000, proved; {kind}, proved\n")),
                 "{text}"
             );
         }

@@ -2,8 +2,8 @@
 //! paths through equilibria, and what divides the paths. Nothing here knows of characters or colours.
 //!
 //! Two species lie along the axes, all others are held: a [`Slice`]. A [`Frame`] lays a grid of cells over a part of it,
-//! `slice` and `window` choose both where nobody says, [`Flow`] evaluates, and [`portrait`] puts everything together for a
-//! plane, [`profile`] for a model of one species. All of it is numerical; nothing is proved here.
+//! `slice` and `window` choose both where nobody says, [`Flow`] evaluates, and [`portrait()`] puts everything together for a
+//! plane, [`profile()`] for a model of one species. All of it is numerical; nothing is proved here.
 
 mod divide;
 mod flow;

@@ -99,10 +99,9 @@ impl Linear<'_> {
             && (Planar { a, b, c, d }).discriminant() == Interval::ZERO
         {
             let apart = |x: Interval| !x.contains_zero();
-            return match b == Interval::ZERO && c == Interval::ZERO {
-                true => (Look::Star, true),
-                false => (Look::Improper, apart(b) || apart(c) || apart(a - d)),
-            };
+            let is_star = b == Interval::ZERO && c == Interval::ZERO;
+            let improper = apart(b) || apart(c) || apart(a - d);
+            return if is_star { (Look::Star, true) } else { (Look::Improper, improper) };
         }
         let discriminant = Discriminant::of(&numbers);
         let look = if discriminant.is_zero() {

@@ -1,10 +1,10 @@
 //! What is proved of the eigenvalues of every matrix between bounds: on which side of the imaginary axis or of the unit
 //! circle how many lie, and in which discs.
 //!
-//! [`half_plane`], [`unit_circle`] and [`discs`] are the ways in. The matrix is divided along entries that are exactly 0;
+//! [`half_plane`], [`unit_circle`] and [`discs()`] are the ways in. The matrix is divided along entries that are exactly 0;
 //! a block of order one to three is judged by its characteristic polynomial (`small`), any block by discs around approximate
-//! eigenvalues (`discs`), and what is defective or nearly so by the inertia of a quadratic form (`inertia`). Nothing here says "critical": a proof that an
-//! eigenvalue lies *on* the border cannot come from bounds.
+//! eigenvalues, and what is defective or nearly so by the inertia of a quadratic form (`inertia`). Nothing here says
+//! "critical": a proof that an eigenvalue lies *on* the border cannot come from bounds.
 
 mod discs;
 mod inertia;

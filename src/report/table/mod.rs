@@ -1,6 +1,6 @@
 //! `restpoint table`: the equilibria of each scenario, for a reader, a report, a spreadsheet and a program.
 //!
-//! [`text()`] is for reading: as wide as it is told, in ASCII and without colour if asked. [`markdown()`] and [`latex`] are
+//! [`text()`] is for reading: as wide as it is told, in ASCII and without colour if asked. [`markdown()`] and [`latex()`] are
 //! for reports, [`csv()`] for spreadsheets and statistics, [`json`] for programs, with the keys of the contract. All only
 //! present what a [`Table`] holds, and all go through the one list of [`COLUMNS`]: to show something more of an
 //! equilibrium, add a column there. Numbers are rounded for people and exact in files; what is proved is told from what is

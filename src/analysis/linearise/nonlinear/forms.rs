@@ -15,9 +15,12 @@ use super::complex::{Vector, combined};
 /// c₂(w) and c₃(w), one entry an equation.
 type Along = Option<[Vec<Interval>; 2]>;
 
+/// Gives them for any direction, over whichever numbers.
+type Derivatives<'t> = dyn FnMut(&[Interval]) -> Along + 't;
+
 /// Derivatives of some equations at a point between bounds.
 pub(super) struct Forms<'t> {
-    along: Box<dyn FnMut(&[Interval]) -> Along + 't>,
+    along: Box<Derivatives<'t>>,
 }
 
 impl<'t> Forms<'t> {
