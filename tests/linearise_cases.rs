@@ -1,6 +1,6 @@
 //! The linear part of every equilibrium of the published models, in all of their scenarios: Jacobian, eigenvalues, type,
 //! stability, and what is proved.
-#![expect(clippy::unwrap_used, clippy::panic, reason = "a test fails by panicking")]
+#![expect(clippy::panic, reason = "a test fails by panicking")]
 
 mod common;
 

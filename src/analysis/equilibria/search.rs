@@ -2,8 +2,8 @@
 //!
 //! Breadth first, so that roots are found early and their surroundings fall away. A box is cut by what is known about
 //! proved roots, by constraint propagation and by interval Newton steps; then Newton's method from its middle proposes a
-//! root. Around a singular point a [zone](super::zone) is settled at once. What is still open when a box is very small stays,
-//! and is said to be open.
+//! root. Around a singular point a [`zone`] is settled at once. What is still open when a box is very small stays, and is
+//! said to be open.
 
 use std::collections::VecDeque;
 
