@@ -1,8 +1,8 @@
 //! What the equations imply: equilibria, and all that is asked of them.
 //!
 //! Takes a model's rows and a budget, returns results that say why they stopped. Nothing here reads a clock, starts a
-//! thread or prints: the budget's `stop` and the order of work come from outside. [`subject`] is what every analysis works
-//! on, [`equilibria`] finds the states, [`linearise`] and [`measures`] say what each is like, [`paths`] where paths go,
+//! thread or prints: the budget's `stop` and the order of work come from outside. [`prepare`] makes a
+//! model's scenarios ready, [`subject`] is what every analysis works on, [`equilibria`] finds the states, [`linearise`] and [`measures`] say what each is like, [`paths`] where paths go,
 //! [`assess`] puts it together, and [`field`] has the direction field to be drawn.
 
 pub mod assess;
@@ -11,4 +11,5 @@ pub mod field;
 pub mod linearise;
 pub mod measures;
 pub mod paths;
+pub mod prepare;
 pub mod subject;

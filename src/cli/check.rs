@@ -10,9 +10,10 @@ use crate::model::lint::lint;
 use crate::model::system::System;
 use crate::model::units::check_units;
 use crate::report::check::{Style, Subject, json as report_json, text as report_text};
+use crate::shell::models::{Reading, read};
 
 use super::arguments::{Format, Options};
-use super::model::{Reading, errors, pretty, read, remarks, wrong};
+use super::model::{errors, pretty, remarks, wrong};
 use super::{Exit, Outcome};
 
 /// Reads the model at `path`, or the one compiled in, and says what was understood.
@@ -25,7 +26,7 @@ pub(super) fn check(path: Option<&Path>, options: &Options, color: bool) -> Outc
         );
     }
     match read(path) {
-        Reading::Unreadable(reason) => Outcome::only(reason, Exit::Fault),
+        Reading::Unreadable(reason) => Outcome::only(format!("error: {reason}\n"), Exit::Fault),
         Reading::Wrong(sources, found) => wrong(&found, &sources, options, color),
         Reading::Model(original) => understood(&original.model, options, color),
     }

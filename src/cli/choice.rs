@@ -3,7 +3,7 @@
 use unicode_normalization::UnicodeNormalization;
 
 use crate::diag::nearest::nearest;
-use crate::model::{Model, Name, Parameter, ParameterId};
+use crate::model::{Model, Name, ParameterId};
 
 use super::arguments::Work;
 
@@ -27,7 +27,7 @@ impl Choice {
         let mut set: Vec<(ParameterId, f64)> = Vec::new();
         for (name, value) in &work.set {
             let id = parameter(model, name)?;
-            if let Some(reason) = model.parameters.get(id.0).and_then(|parameter| ruled_out(parameter, *value)) {
+            if let Some(reason) = model.parameters.get(id.0).and_then(|parameter| parameter.ruled_out(*value)) {
                 return Err(reason);
             }
             set.retain(|(other, _)| *other != id);
@@ -89,19 +89,5 @@ fn listed(names: &[&str]) -> String {
     match names.len().saturating_sub(MOST_LISTED) {
         0 => quoted.join(", "),
         more => format!("{} and {more} more", quoted.join(", ")),
-    }
-}
-
-/// Why the parameter's own limits do not allow a value.
-fn ruled_out(parameter: &Parameter, value: f64) -> Option<String> {
-    let Parameter { name, min, max, .. } = parameter;
-    match (min, max) {
-        (Some(min), _) if value < *min => {
-            Some(format!("{name} = {value}: the model says that {name} is at least {min}"))
-        }
-        (_, Some(max)) if value > *max => {
-            Some(format!("{name} = {value}: the model says that {name} is at most {max}"))
-        }
-        _ => None,
     }
 }

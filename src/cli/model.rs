@@ -1,66 +1,13 @@
-//! The model that a command works on: from a file, from standard input, or compiled in; and what is said of a wrong one.
-
-use std::path::Path;
+//! What is said of a model that cannot be used, for readers and for programs.
 
 use serde_json::{Value, json};
 
 use crate::diag::cleanse::is_hostile;
 use crate::diag::render::{position, render};
 use crate::diag::{Diagnostic, Severity, Sources};
-use crate::model::Model;
-use crate::model::load::{NoFiles, load};
-use crate::shell::files::{read_model, sha256};
 
 use super::arguments::{Format, Options};
 use super::{Exit, Outcome};
-
-/// The model that is shown when none is named.
-const DEMONSTRATION: (&str, &str) = ("scenarios/skarnby-bank.yaml", include_str!("../../scenarios/skarnby-bank.yaml"));
-
-/// What reading a model came to.
-pub(super) enum Reading {
-    /// A sound model.
-    Model(Box<Original>),
-    /// Everything that is wrong with it.
-    Wrong(Sources, Vec<Diagnostic>),
-    /// It could not be read at all, and why.
-    Unreadable(String),
-}
-
-/// A model, and what tells its files from all others.
-pub(super) struct Original {
-    pub(super) model: Model,
-    /// SHA-256 of the model file.
-    pub(super) sha256: String,
-    /// Names and SHA-256 of the tables that it names.
-    pub(super) tables: Vec<(String, String)>,
-}
-
-/// Reads the model at `path`; without one, the model that is compiled in.
-pub(super) fn read(path: Option<&Path>) -> Reading {
-    let Some(path) = path else {
-        let (name, text) = DEMONSTRATION;
-        return reading(load(name, text.as_bytes(), &NoFiles), sha256(text.as_bytes()), Vec::new);
-    };
-    match read_model(path) {
-        Ok(found) => {
-            let loaded = load(&found.name, &found.bytes, &found.tables);
-            reading(loaded, sha256(&found.bytes), || found.tables.into_read())
-        }
-        Err(error) => Reading::Unreadable(format!("error: {error:#}\n")),
-    }
-}
-
-fn reading(
-    (model, sources, found): (Option<Model>, Sources, Vec<Diagnostic>),
-    sha256: String,
-    tables: impl FnOnce() -> Vec<(String, String)>,
-) -> Reading {
-    match model {
-        Some(model) => Reading::Model(Box::new(Original { model, sha256, tables: tables() })),
-        None => Reading::Wrong(sources, found),
-    }
-}
 
 /// A model that cannot be used: the messages for a reader, and for a program where one is asked for.
 pub(super) fn wrong(found: &[Diagnostic], sources: &Sources, options: &Options, color: bool) -> Outcome {

@@ -1,20 +1,23 @@
 //! `restpoint sketch`: the direction field of each scenario as text.
 
 use crate::analysis::field::{Slice, Window};
+use crate::analysis::prepare::Prepared;
 use crate::analysis::subject::Subject;
 use crate::diag::Diagnostic;
 use crate::diag::cleanse::cleanse;
-use crate::model::Model;
+use crate::model::{Model, Original};
 use crate::report::sketch::{Picture, Plot, Size, Style, View, closing, heading, legend_rows, text, window};
 use crate::report::table::{Limits, Page, Scene, Solved, failed, identify};
+use crate::shell::models::{Reading, read};
 use crate::shell::signal::Interrupt;
+use crate::shell::solver::BOXES;
 use crate::shell::terminal::ROWS;
 use crate::shell::workers::Threads;
 
 use super::arguments::{BUDGET, Format, Options, Sketch, Work};
 use super::choice::{self, Choice};
-use super::model::{Original, Reading, read, remarks, wrong};
-use super::solve::{BOXES, Prepared, Solver};
+use super::model::{remarks, wrong};
+use super::solve::Solver;
 use super::{Exit, Outcome, Screen};
 
 /// Rows below which a drawing is not cut to let its legend fit the terminal as well.
@@ -27,7 +30,7 @@ pub(super) fn sketch(asked: &Sketch, options: &Options, screen: Screen) -> Outco
         return Outcome::only(reason.to_owned(), Exit::Usage);
     }
     let original = match read(Some(&asked.model)) {
-        Reading::Unreadable(reason) => return Outcome::only(reason, Exit::Fault),
+        Reading::Unreadable(reason) => return Outcome::only(format!("error: {reason}\n"), Exit::Fault),
         Reading::Wrong(sources, found) => return wrong(&found, &sources, options, screen.color_remarks),
         Reading::Model(original) => original,
     };

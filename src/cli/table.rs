@@ -2,19 +2,22 @@
 
 use std::path::Path;
 
+use crate::analysis::prepare::Prepared;
 use crate::diag::Diagnostic;
 use crate::diag::cleanse::cleanse;
-use crate::model::Model;
+use crate::model::{Model, Original};
 use crate::report::table::{
     Limits, Page, Scene, Selection, Solved, Style, Table, UnknownColumn, csv, guide, json, latex, markdown, text,
 };
+use crate::shell::models::{Reading, read};
 use crate::shell::signal::Interrupt;
+use crate::shell::solver::BOXES;
 use crate::shell::workers::Threads;
 
 use super::arguments::{BUDGET, Format, Options, Show, Work};
 use super::choice::Choice;
-use super::model::{Original, Reading, pretty, read, remarks, wrong};
-use super::solve::{BOXES, Prepared, Solver};
+use super::model::{pretty, remarks, wrong};
+use super::solve::Solver;
 use super::{Exit, Outcome, Screen};
 
 /// Says what columns there are.
@@ -33,7 +36,7 @@ pub(super) fn table(path: Option<&Path>, work: &Work, show: &Show, options: &Opt
         Err(unknown) => return Outcome::only(no_such_column(&unknown), Exit::Usage),
     };
     let original = match read(path) {
-        Reading::Unreadable(reason) => return Outcome::only(reason, Exit::Fault),
+        Reading::Unreadable(reason) => return Outcome::only(format!("error: {reason}\n"), Exit::Fault),
         Reading::Wrong(sources, found) => return wrong(&found, &sources, options, screen.color_remarks),
         Reading::Model(original) => original,
     };

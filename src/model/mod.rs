@@ -14,12 +14,15 @@ mod follow;
 pub mod lint;
 pub mod load;
 mod messages;
+mod original;
 mod overlay;
 mod slips;
 pub mod system;
 mod tree;
 pub mod units;
 mod yaml;
+
+pub use original::Original;
 
 use std::collections::BTreeMap;
 

@@ -6,9 +6,25 @@
 #![expect(clippy::result_large_err, reason = "an error ends the run, so its size does not matter")]
 
 use super::messages::Message;
-use super::{Harvest, Model, Name, ParameterId, Process, Scenario};
+use super::{Harvest, Model, Name, Parameter, ParameterId, Process, Scenario};
 use crate::diag::Diagnostic;
 use crate::expr::constant::evaluate;
+
+impl Parameter {
+    /// Why its own limits do not allow a value.
+    pub fn ruled_out(&self, value: f64) -> Option<String> {
+        let Self { name, min, max, .. } = self;
+        match (min, max) {
+            (Some(min), _) if value < *min => {
+                Some(format!("{name} = {value}: the model says that {name} is at least {min}"))
+            }
+            (_, Some(max)) if value > *max => {
+                Some(format!("{name} = {value}: the model says that {name} is at most {max}"))
+            }
+            _ => None,
+        }
+    }
+}
 
 impl Model {
     /// Index of the scenario of that name.

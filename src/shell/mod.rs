@@ -2,7 +2,9 @@
 
 pub mod clock;
 pub mod files;
+pub mod models;
 pub mod progress;
 pub mod signal;
+pub mod solver;
 pub mod terminal;
 pub mod workers;
