@@ -24,7 +24,7 @@ const EDGES: &[(&str, &[&str])] = &[
     ("app", &["diag", "model", "analysis", "report"]),
     ("ui", &["diag", "model", "analysis", "report", "app"]),
     ("shell", &["diag", "model", "analysis", "report", "app", "ui"]),
-    ("cli", &["diag", "model", "analysis", "report", "shell"]),
+    ("cli", &["diag", "model", "analysis", "report", "app", "shell"]),
 ];
 
 /// A file longer than this is to be divided.

@@ -19,6 +19,7 @@ use crate::shell::{files, terminal};
 mod arguments;
 mod check;
 mod choice;
+mod interface;
 mod model;
 mod sketch;
 mod solve;
@@ -28,20 +29,30 @@ mod table;
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
 pub enum Exit {
     /// Everything asked for was done.
-    Done = 0,
+    Done,
     /// The model or its data is at fault, or a file could not be read or written.
-    Fault = 1,
+    Fault,
     /// The command line was not understood.
-    Usage = 2,
+    Usage,
     /// Something shown is not proved, and proof was asked for.
-    Unproved = 3,
+    Unproved,
     /// Interrupted; the result is partial and says so.
-    Interrupted = 130,
+    Interrupted,
+    /// A signal of this number ended the interface.
+    Signal(i32),
 }
 
 impl From<Exit> for ExitCode {
     fn from(exit: Exit) -> Self {
-        Self::from(exit as u8)
+        Self::from(match exit {
+            Exit::Done => 0,
+            Exit::Fault => 1,
+            Exit::Usage => 2,
+            Exit::Unproved => 3,
+            Exit::Interrupted => 130,
+            // As a shell reports a process that a signal ended.
+            Exit::Signal(number) => u8::try_from(128 + number).unwrap_or(1),
+        })
     }
 }
 
@@ -141,7 +152,9 @@ fn perform(arguments: &Arguments, screen: Screen) -> Outcome {
         Some(Command::Table { model, work, show }) => table::table(model.as_deref(), work, show, options, screen),
         Some(Command::Sketch(asked)) => sketch::sketch(asked, options, screen),
         None if arguments.show.is_help() => table::columns(options),
-        None => table::table(arguments.model.as_deref(), &arguments.work, &arguments.show, options, screen),
+        None => interface::interface(arguments).unwrap_or_else(|| {
+            table::table(arguments.model.as_deref(), &arguments.work, &arguments.show, options, screen)
+        }),
     }
 }
 

@@ -6,8 +6,9 @@
 #![expect(clippy::result_large_err, reason = "an error ends the run, so its size does not matter")]
 
 use super::messages::Message;
-use super::{Harvest, Model, Name, Parameter, ParameterId, Process, Scenario};
-use crate::diag::Diagnostic;
+use super::{Formula, Harvest, Model, Name, Parameter, ParameterId, Process, Scenario};
+use crate::diag::{Diagnostic, Location, Span};
+use crate::expr::ast::{Expr, ExprKind};
 use crate::expr::constant::evaluate;
 
 impl Parameter {
@@ -26,10 +27,35 @@ impl Parameter {
     }
 }
 
+impl Formula {
+    /// A finite number that stands nowhere in the file, to be placed where `at` says.
+    fn number(value: f64, at: Location) -> Self {
+        let text = value.to_string();
+        let span = Span::new(0, text.len());
+        let size = Expr { kind: ExprKind::Number(value.abs()), span };
+        let expr = if value < 0.0 { Expr { kind: ExprKind::Neg(Box::new(size)), span } } else { size };
+        Self { text, expr, at, origin: Vec::new() }
+    }
+}
+
 impl Model {
     /// Index of the scenario of that name.
     pub fn scenario(&self, name: &str) -> Option<usize> {
         self.scenarios.iter().position(|scenario| scenario.name == name)
+    }
+
+    /// The model with one more scenario at its end: that of index `base` with some values set over it, under the same name.
+    pub fn with_values_over(&self, base: usize, values: &[(ParameterId, f64)]) -> Self {
+        let mut model = self.clone();
+        if let Some(mut scenario) = self.scenarios.get(base).cloned() {
+            for &(id, value) in values {
+                scenario.values.retain(|(other, _)| *other != id);
+                scenario.values.push((id, Formula::number(value, scenario.at)));
+            }
+            scenario.values.sort_by_key(|(id, _)| *id);
+            model.scenarios.push(scenario);
+        }
+        model
     }
 
     /// The processes under a scenario: the base ones in their order, replaced in place or left out, then the added ones.

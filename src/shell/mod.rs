@@ -2,6 +2,7 @@
 
 pub mod clock;
 pub mod files;
+pub mod interface;
 pub mod models;
 pub mod progress;
 pub mod signal;

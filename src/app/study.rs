@@ -1,0 +1,194 @@
+//! A model that is open: its scenarios, what is known of each, and what was tried.
+
+use std::sync::Arc;
+
+use super::Source;
+use super::sketch::Sketch;
+use crate::analysis::prepare::Prepared;
+use crate::model::{Model, Original, ParameterId};
+use crate::report::table::{Scene, Solved, identify};
+
+/// A model ready to be searched. Two of them are the same where their editions are.
+#[derive(Clone, Debug)]
+pub struct World {
+    /// Another number for every reading and every tried value.
+    pub edition: u64,
+    /// The model, the tried scenario last where there is one.
+    pub original: Original,
+    /// Its equations and search box.
+    pub prepared: Prepared,
+}
+
+impl PartialEq for World {
+    fn eq(&self, other: &Self) -> bool {
+        self.edition == other.edition
+    }
+}
+
+/// What is known of one scenario.
+#[derive(Clone, Debug)]
+pub struct Slot {
+    /// What it is to be searched in.
+    pub world: Arc<World>,
+    /// Its index among the scenarios of that model.
+    pub scenario: usize,
+    /// What was found last, in which world; it is shown until there is something newer.
+    pub found: Option<(Arc<World>, Arc<Scene>)>,
+}
+
+impl Slot {
+    /// Not searched yet.
+    pub fn new(world: Arc<World>, scenario: usize) -> Self {
+        Self { world, scenario, found: None }
+    }
+
+    /// Whether what is shown is of the world that it is to be searched in.
+    pub fn is_fresh(&self) -> bool {
+        self.found.as_ref().is_some_and(|(world, _)| *world == self.world)
+    }
+
+    /// What was found, if it could be searched at all.
+    pub fn solved(&self) -> Option<&Solved> {
+        self.found.as_ref().and_then(|(_, scene)| scene.outcome.as_ref().ok())
+    }
+
+    /// The scenario's name.
+    pub fn name(&self) -> &str {
+        self.world.original.model.scenarios.get(self.scenario).map_or("", |scenario| &scenario.name)
+    }
+}
+
+/// Values over one scenario of the file.
+#[derive(Clone, Debug, Default, PartialEq)]
+pub struct TriedSet {
+    /// Index of the scenario that they are set over.
+    pub base: usize,
+    /// The values, one a parameter at most, in the order of parameters.
+    pub values: Vec<(ParameterId, f64)>,
+}
+
+/// Values that were tried, and the way back.
+#[derive(Clone, Debug, Default, PartialEq)]
+pub struct Tried {
+    /// What is tried now; nothing where it has no values.
+    pub now: TriedSet,
+    /// What it was before, the last at the end.
+    pub undo: Vec<TriedSet>,
+    /// What was taken back, the last at the end.
+    pub redo: Vec<TriedSet>,
+    /// The edition of the world that it is to be searched in.
+    pub edition: u64,
+}
+
+/// A model that is open.
+#[derive(Clone, Debug)]
+pub struct Study {
+    /// Where it comes from.
+    pub source: Source,
+    /// The model as the file has it.
+    pub world: Arc<World>,
+    /// One a scenario of the file, in its order; then, where values are tried, one for those.
+    pub slots: Vec<Slot>,
+    /// Names of the equilibria found, slot by slot.
+    pub names: Vec<Vec<String>>,
+    /// The slot that is looked at.
+    pub current: usize,
+    /// The equilibrium that is selected, among those of the slot.
+    pub chosen: usize,
+    /// The first equilibrium of the list that is shown.
+    pub from: usize,
+    /// What the sketch shows.
+    pub sketch: Sketch,
+    /// Values that were tried.
+    pub tried: Tried,
+    /// The parameter that is selected where values are tried.
+    pub parameter: usize,
+    /// The first parameter that is shown.
+    pub parameters_from: usize,
+}
+
+impl Study {
+    /// A model of which nothing is known yet, with the scenarios of these indices.
+    pub fn new(source: Source, world: Arc<World>, scenarios: impl IntoIterator<Item = usize>) -> Self {
+        let slots = scenarios.into_iter().map(|scenario| Slot::new(Arc::clone(&world), scenario)).collect();
+        Self {
+            source,
+            world,
+            slots,
+            names: Vec::new(),
+            current: 0,
+            chosen: 0,
+            from: 0,
+            sketch: Sketch::default(),
+            tried: Tried::default(),
+            parameter: 0,
+            parameters_from: 0,
+        }
+    }
+
+    /// The model as the file has it.
+    pub fn model(&self) -> &Model {
+        &self.world.original.model
+    }
+
+    /// The slot that is looked at.
+    pub fn slot(&self) -> Option<&Slot> {
+        self.slots.get(self.current)
+    }
+
+    /// What was found in it.
+    pub fn solved(&self) -> Option<&Solved> {
+        self.slot().and_then(Slot::solved)
+    }
+
+    /// Names of the equilibria of a slot.
+    pub fn names(&self, slot: usize) -> &[String] {
+        self.names.get(slot).map_or(&[], Vec::as_slice)
+    }
+
+    /// How many equilibria the slot that is looked at has.
+    pub fn count(&self) -> usize {
+        self.solved().map_or(0, |solved| solved.equilibria.list.len())
+    }
+
+    /// How many slots are those of the file's scenarios.
+    pub fn of_file(&self) -> usize {
+        self.slots.iter().filter(|slot| slot.scenario < self.model().scenarios.len()).count()
+    }
+
+    /// Whether a slot holds tried values.
+    pub fn is_tried(&self, slot: usize) -> bool {
+        slot >= self.of_file()
+    }
+
+    /// Takes what was found in a world's scenario; nothing where nobody asks for it any more.
+    pub fn take(&mut self, world: &Arc<World>, scene: Scene) {
+        let chosen = self.name_of_chosen();
+        let scenario = scene.scenario;
+        if let Some(slot) = self.slots.iter_mut().find(|slot| slot.world == *world && slot.scenario == scenario) {
+            slot.found = Some((Arc::clone(world), Arc::new(scene)));
+        }
+        self.name_all();
+        self.choose_named(chosen.as_deref());
+    }
+
+    /// The name of the equilibrium that is selected.
+    pub fn name_of_chosen(&self) -> Option<String> {
+        self.names(self.current).get(self.chosen).cloned()
+    }
+
+    /// Selects the equilibrium of that name in the slot that is looked at; where it has none, the nearest place in the list.
+    pub fn choose_named(&mut self, name: Option<&str>) {
+        if let Some(place) = self.names(self.current).iter().position(|other| Some(other.as_str()) == name) {
+            self.chosen = place;
+        }
+        self.chosen = self.chosen.min(self.count().saturating_sub(1));
+    }
+
+    /// Names the equilibria of all slots.
+    pub fn name_all(&mut self) {
+        let list = |slot: &'_ Slot| slot.solved().map_or(Vec::new(), |solved| solved.equilibria.list.clone());
+        let lists: Vec<Vec<_>> = self.slots.iter().map(list).collect();
+        self.names = identify(&lists.iter().map(Vec::as_slice).collect::<Vec<_>>());
+    }
+}

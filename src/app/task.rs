@@ -1,0 +1,88 @@
+//! What takes time: a task carries all that it needs, an answer all that came of it.
+
+use std::sync::Arc;
+
+use super::study::{TriedSet, World};
+use super::{Read, Source};
+use crate::analysis::field::{Slice, Window};
+use crate::analysis::paths::Path;
+use crate::report::sketch::{Picture, Plot};
+use crate::report::table::{Scene, Solved};
+
+/// What takes time. Two tasks that are equal have the same answer.
+#[derive(Clone, Debug, PartialEq)]
+pub enum Task {
+    /// Reads a model and makes it ready; the number tells one reading from another.
+    Read(Source, u64),
+    /// Makes a model with a tried scenario at its end ready; the number is the edition that it gets.
+    Prepare(Arc<World>, TriedSet, u64),
+    /// Searches a scenario.
+    Solve {
+        /// The model.
+        world: Arc<World>,
+        /// Which scenario.
+        scenario: usize,
+        /// Seconds that it may take.
+        budget: f64,
+    },
+    /// Computes what a sketch shows.
+    Paint(Painting),
+    /// Follows the path from a state.
+    Follow {
+        /// The model.
+        world: Arc<World>,
+        /// Which scenario.
+        scenario: usize,
+        /// The state of all species.
+        start: Vec<f64>,
+        /// For how long, in time units; backwards where negative.
+        until: f64,
+    },
+}
+
+/// A sketch to be computed.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Painting {
+    /// The model.
+    pub world: Arc<World>,
+    /// What was found.
+    pub scene: Found,
+    /// The plane.
+    pub slice: Slice,
+    /// The part of the plane.
+    pub window: Window,
+    /// The cells.
+    pub plot: Plot,
+}
+
+/// What was found in a scenario, the same where it is the same search.
+#[derive(Clone, Debug)]
+pub struct Found(pub Arc<Scene>);
+
+impl PartialEq for Found {
+    fn eq(&self, other: &Self) -> bool {
+        Arc::ptr_eq(&self.0, &other.0)
+    }
+}
+
+impl Found {
+    /// What was found, where it could be searched.
+    pub fn solved(&self) -> Option<&Solved> {
+        self.0.outcome.as_ref().ok()
+    }
+}
+
+/// What came of a task.
+#[derive(Clone, Debug)]
+pub enum Answer {
+    /// Of reading.
+    Read(Read),
+    /// Of making ready: the world, or what is wrong with the tried values.
+    Prepared(Result<Arc<World>, String>),
+    /// Of searching.
+    Solved(Box<Scene>),
+    /// Of painting; nothing where the scenario has no equations.
+    Painted(Option<Arc<Picture>>),
+    /// Of following.
+    Followed(Option<Arc<Path>>),
+}

@@ -1,0 +1,130 @@
+//! What the user wants, on every screen.
+
+use super::{entry, sketch, values};
+use crate::app::action::{Action, Step};
+use crate::app::geometry::{equilibria, listed};
+use crate::app::{App, Dialog, Effect, Purpose, Screen};
+
+/// Does it.
+pub(super) fn act(app: &mut App, action: Action) -> Vec<Effect> {
+    match action {
+        Action::Leave => return leave(app),
+        Action::Suspend => return vec![Effect::Suspend],
+        Action::Redraw => return vec![Effect::Redraw],
+        Action::Stop => return stop(app),
+        Action::Help => app.dialog = Some(Dialog::Help { from: 0 }),
+        Action::Show(screen) => show(app, screen),
+        Action::Step(step) => walk(app, step),
+        Action::Scenario(step) => scenario(app, step),
+        Action::Accept => return entry::accept(app),
+        Action::Type => entry::begin(app),
+        Action::Write => entry::open(app, Purpose::Write),
+        Action::Record => entry::open(app, Purpose::Record),
+        Action::Reload => reload(app),
+        Action::Closer
+        | Action::Wider
+        | Action::Fit
+        | Action::Centre
+        | Action::Drag
+        | Action::Point
+        | Action::NoPoint
+        | Action::Backwards
+        | Action::Species(_)
+        | Action::Logarithmic(_)
+        | Action::Move(_) => sketch::act(app, action),
+        Action::Fine(_) | Action::Coarse(_) | Action::Undo | Action::Redo | Action::Forget => values::act(app, action),
+        Action::Other | Action::Knock(_) => {}
+    }
+    Vec::new()
+}
+
+fn leave(_: &mut App) -> Vec<Effect> {
+    vec![Effect::Leave]
+}
+
+/// Closes what is open; else ends what is held; else stops the search, which then answers with what it has.
+fn stop(app: &mut App) -> Vec<Effect> {
+    app.notice = None;
+    if app.dialog.take().is_some() {
+        return Vec::new();
+    }
+    if app.hold().is_some() {
+        if let Some(study) = &mut app.study {
+            study.sketch.hold = None;
+        }
+        return Vec::new();
+    }
+    let search = app.desk.search().map(|job| job.id);
+    if let Some(id) = search {
+        app.say("stopping the search");
+        return vec![Effect::Stop(id)];
+    }
+    if app.study.is_some() && app.screen != Screen::Equilibria {
+        app.screen = Screen::Equilibria;
+    }
+    Vec::new()
+}
+
+fn show(app: &mut App, screen: Screen) {
+    app.notice = None;
+    app.screen = screen;
+    if let Some(study) = &mut app.study {
+        study.sketch.hold = None;
+    }
+}
+
+/// Reads the model again under another number, so that it is another task.
+pub(super) fn reload(app: &mut App) {
+    if let Some(study) = &app.study {
+        app.edition += 1;
+        app.reading = Some((study.source.clone(), app.edition));
+    }
+}
+
+/// Through the list of what is open.
+fn walk(app: &mut App, step: Step) {
+    let page = usize::from(app.size.rows / 2).max(1);
+    match (&mut app.dialog, app.screen, &mut app.study) {
+        (Some(Dialog::Help { from } | Dialog::Message { from, .. }), ..) => {
+            *from = stepped(*from, usize::MAX, page, step);
+        }
+        (Some(Dialog::Entry(_)), ..) => {}
+        (None, Screen::Chooser, _) => {
+            app.chooser.chosen = stepped(app.chooser.chosen, app.chooser.entries.len(), page, step);
+        }
+        (None, Screen::Values, Some(study)) => {
+            study.parameter = stepped(study.parameter, study.model().parameters.len(), page, step);
+        }
+        (None, _, Some(study)) => {
+            let count = study.count();
+            let page = listed(equilibria(app.size, count).list);
+            study.chosen = stepped(study.chosen, count, page, step);
+        }
+        _ => {}
+    }
+}
+
+/// A place in a list after a step; what lies behind its end is brought back when the list is known.
+pub(super) fn stepped(place: usize, count: usize, page: usize, step: Step) -> usize {
+    let last = count.saturating_sub(1);
+    match step {
+        Step::Back => place.saturating_sub(1),
+        Step::On => place.saturating_add(1).min(last),
+        Step::PageBack => place.saturating_sub(page),
+        Step::PageOn => place.saturating_add(page).min(last),
+        Step::First => 0,
+        Step::Last => last,
+    }
+}
+
+/// To another scenario, round at the ends; the selected equilibrium stays the same where it has one there.
+fn scenario(app: &mut App, step: Step) {
+    let Some(study) = &mut app.study else { return };
+    let count = study.slots.len().max(1);
+    let name = study.name_of_chosen();
+    study.current = match step {
+        Step::Back => (study.current + count - 1) % count,
+        _ => (study.current + 1) % count,
+    };
+    study.choose_named(name.as_deref());
+}

@@ -1,0 +1,65 @@
+//! What lies over a screen: the keys, a message, a text that is typed.
+
+use unicode_width::UnicodeWidthStr;
+
+use super::paint::{Page, wrapped};
+use crate::app::geometry::Area;
+use crate::app::keymap::of;
+use crate::app::{App, Entry, Purpose};
+use crate::report::grid::Ink;
+
+/// Columns for the keys.
+const KEYS: u16 = 18;
+
+/// Every key of the screen below, from the table that binds them.
+pub(super) fn help(app: &App, page: &mut Page<'_>, area: Area, from: usize) {
+    let below = crate::app::keymap::place(&App { dialog: None, ..app.clone() });
+    let lines: Vec<(String, String)> = of(below)
+        .map(|binding| {
+            let keys: Vec<String> = binding.keys.iter().map(|key| key.name()).collect();
+            (keys.join(" or "), binding.help.to_owned())
+        })
+        .collect();
+    page.text(area, [0, 0], "Keys here", Ink::Strong);
+    let (_, list) = area.top(1);
+    let from = from.min(lines.len().saturating_sub(list.rows.into()));
+    for (row, (keys, help)) in lines.iter().skip(from).take(list.rows.into()).enumerate() {
+        page.text(list, [0, row as u16], keys, Ink::Strong);
+        page.text(list, [KEYS, row as u16], help, Ink::Plain);
+    }
+}
+
+/// A message that fills the screen.
+pub(super) fn message(page: &mut Page<'_>, area: Area, title: &str, lines: &[String], from: usize) {
+    page.text(area, [0, 0], title, Ink::Warning);
+    let (_, list) = area.top(2);
+    let from = from.min(lines.len().saturating_sub(list.rows.into()));
+    for (row, line) in lines.iter().skip(from).take(list.rows.into()).enumerate() {
+        page.text(list, [0, row as u16], line, Ink::Plain);
+    }
+}
+
+/// A line to type in, above the status.
+pub(super) fn entry(page: &mut Page<'_>, area: Area, entry: &Entry) {
+    let (line, _) = area.bottom(3);
+    page.clear(line);
+    page.rule(line, 0);
+    let asked = match entry.purpose {
+        Purpose::Open => "path of a model: ",
+        Purpose::Value => "new value: ",
+        Purpose::Write => "write to: ",
+        Purpose::Record => "name of the new scenario: ",
+    };
+    let after = page.text(line, [0, 1], asked, Ink::Strong);
+    // The end of a long text is what matters: it is where the cursor is.
+    let room = usize::from(line.columns.saturating_sub(after + 1));
+    let before = &entry.text[..entry.cursor];
+    let skipped = before.char_indices().map(|(place, _)| place).find(|&place| before[place..].width() < room.max(2));
+    let from = skipped.unwrap_or(0);
+    let at = page.text(line, [after, 1], &before[from..], Ink::Plain);
+    let under = entry.text[entry.cursor..].chars().next().unwrap_or(' ').to_string();
+    let end = page.text(line, [at, 1], &under, Ink::Chosen);
+    page.text(line, [end, 1], entry.text[entry.cursor..].strip_prefix(under.as_str()).unwrap_or(""), Ink::Plain);
+    let hint = wrapped(&entry.hint, line.columns.into()).into_iter().next().unwrap_or_default();
+    page.text(line, [0, 2], &hint, Ink::Warning);
+}

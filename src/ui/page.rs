@@ -1,0 +1,123 @@
+//! What all screens share: the heading, the line on what happens, the keys that matter.
+
+use super::paint::Page;
+use crate::app::action::{Action, Step};
+use crate::app::geometry::{Area, SMALLEST, frame};
+use crate::app::keymap::{Place, key_of, place};
+use crate::app::{App, Screen, Study};
+use crate::report::grid::Ink;
+use unicode_width::UnicodeWidthStr;
+
+/// In place of all else where the terminal is too small.
+pub(super) fn too_small(app: &App, page: &mut Page<'_>) {
+    let area = Area { x: 0, y: 0, columns: app.size.columns, rows: app.size.rows };
+    let text = format!(
+        "restpoint needs {} columns and {} rows; here are {} and {}.",
+        SMALLEST.columns, SMALLEST.rows, app.size.columns, app.size.rows
+    );
+    page.words(area, &text, Ink::Plain);
+}
+
+/// The model's title, and which scenario.
+pub(super) fn heading(app: &App, page: &mut Page<'_>, area: Area) {
+    let Some(study) = app.study.as_ref().filter(|_| app.screen != Screen::Chooser) else {
+        page.text(area, [0, 0], "restpoint: which model?", Ink::Strong);
+        return;
+    };
+    let scenario = scenario(study);
+    let width = u16::try_from(scenario.width()).unwrap_or(u16::MAX);
+    let room = area.columns.saturating_sub(width + 2).max(area.columns / 3);
+    let (left, right) = area.left(room);
+    page.text(left, [0, 0], &study.model().title.value, Ink::Strong);
+    let start = right.columns.saturating_sub(width);
+    page.text(right, [start, 0], &scenario, Ink::Strong);
+}
+
+fn scenario(study: &Study) -> String {
+    let Some(slot) = study.slot() else { return "no scenario".to_owned() };
+    let which = format!("{} of {}", study.current + 1, study.slots.len());
+    let tried = if study.is_tried(study.current) { "tried: " } else { "" };
+    format!("{tried}{} ({which})", slot.name())
+}
+
+/// What is under way; else what has happened; else the caution.
+pub(super) fn status(app: &App, page: &mut Page<'_>, area: Area) {
+    if let Some(notice) = &app.notice {
+        let (text, ink) = if notice.is_fault {
+            (format!("! {}", notice.text), Ink::Warning)
+        } else {
+            (notice.text.clone(), Ink::Plain)
+        };
+        page.text(area, [0, 0], &text, ink);
+    } else if let Some(job) = app.desk.search() {
+        let progress = job.progress;
+        let text = format!("searching: {} faces, {} boxes; Esc stops it", progress.faces, progress.boxes);
+        page.text(area, [0, 0], &text, Ink::Plain);
+    } else if app.reading.is_some() {
+        page.text(area, [0, 0], "reading", Ink::Plain);
+    } else {
+        let long =
+            "A local result about a model. Limits are set by the authority, under local law and licensed practice.";
+        let short = "A local result about a model; limits are set by the authority under local law.";
+        let text = [long, short].into_iter().find(|text| text.len() <= area.columns.into());
+        page.text(area, [0, 0], text.unwrap_or("A local result about a model; the authority sets limits."), Ink::Faint);
+    }
+}
+
+/// The keys that matter most where the user is.
+pub(super) fn keys(app: &App, page: &mut Page<'_>, area: Area) {
+    let place = place(app);
+    let mut column = 0;
+    for (action, word) in hints(place) {
+        let Some(key) = key_of(place, action) else { continue };
+        let text = format!("{key} {word}");
+        let width = text.width() as u16;
+        if column + width > area.columns {
+            break;
+        }
+        let after = page.text(area, [column, 0], &key, Ink::Strong);
+        page.text(area, [after + 1, 0], word, Ink::Plain);
+        column += width + 2;
+    }
+}
+
+fn hints(place: Place) -> Vec<(Action, &'static str)> {
+    let help = (Action::Help, "help");
+    let leave = (Action::Leave, "leave");
+    match place {
+        Place::On(Screen::Chooser) => {
+            vec![help, (Action::Accept, "open"), (Action::Type, "type a path"), leave]
+        }
+        Place::On(Screen::Values) => vec![
+            help,
+            (Action::Fine(Step::On), "raise"),
+            (Action::Fine(Step::Back), "lower"),
+            (Action::Type, "type"),
+            (Action::Undo, "undo"),
+            (Action::Record, "new scenario"),
+            (Action::Show(Screen::Equilibria), "equilibria"),
+            leave,
+        ],
+        Place::On(_) => vec![
+            help,
+            (Action::Step(Step::On), "next"),
+            (Action::Scenario(Step::On), "scenario"),
+            (Action::Show(Screen::SideBySide), "side by side"),
+            (Action::Show(Screen::Values), "values"),
+            (Action::Show(Screen::Knock), "after a knock"),
+            (Action::Show(Screen::Interactions), "interactions"),
+            (Action::Point, "move a point"),
+            (Action::Write, "write"),
+            leave,
+        ],
+        Place::Pointing => vec![(Action::Stop, "done"), (Action::Backwards, "where from"), (Action::NoPoint, "away")],
+        Place::Dragging => vec![(Action::Stop, "done"), (Action::Closer, "closer"), (Action::Wider, "wider")],
+        Place::Reading => vec![(Action::Step(Step::On), "on"), (Action::Stop, "back")],
+        Place::Typing => vec![(Action::Accept, "take it"), (Action::Stop, "leave it")],
+    }
+}
+
+/// All between heading and status.
+pub(super) fn body(app: &App) -> Area {
+    frame(app.size).body
+}
