@@ -7,5 +7,6 @@ pub mod models;
 pub mod progress;
 pub mod signal;
 pub mod solver;
+pub mod tasks;
 pub mod terminal;
 pub mod workers;

@@ -2,7 +2,7 @@
 
 use super::paint::Page;
 use crate::app::action::{Action, Step};
-use crate::app::geometry::{Area, SMALLEST, frame};
+use crate::app::geometry::{Area, SMALLEST};
 use crate::app::keymap::{Place, key_of, place};
 use crate::app::{App, Screen, Study};
 use crate::report::grid::Ink;
@@ -115,9 +115,4 @@ fn hints(place: Place) -> Vec<(Action, &'static str)> {
         Place::Reading => vec![(Action::Step(Step::On), "on"), (Action::Stop, "back")],
         Place::Typing => vec![(Action::Accept, "take it"), (Action::Stop, "leave it")],
     }
-}
-
-/// All between heading and status.
-pub(super) fn body(app: &App) -> Area {
-    frame(app.size).body
 }

@@ -1,0 +1,93 @@
+//! Does what takes time: from a task to its answer, on whatever thread it is called.
+//!
+//! To add a task: a variant in `app::task`, an arm in [`perform`].
+
+use std::sync::Arc;
+
+use crate::analysis::equilibria::{Budget, Progress};
+use crate::analysis::paths::follow;
+use crate::analysis::prepare::Prepared;
+use crate::app::study::{TriedSet, World};
+use crate::app::task::Painting;
+use crate::app::{Answer, Read, Source, Task};
+use crate::model::Original;
+use crate::report::sketch::{Picture, View};
+
+use super::clock::Deadline;
+use super::models::{COMPILED, Reading, compiled, read};
+use super::solver::{BOXES, scene};
+use super::workers::Threads;
+
+/// What a task is done with.
+pub struct Means<'m> {
+    /// Threads that a search may use.
+    pub threads: Threads,
+    /// Asked often; the task ends soon after it says so.
+    pub stop: &'m (dyn Fn() -> bool + Sync),
+    /// Told of how far a search has come.
+    pub observer: &'m (dyn Fn(Progress) + Sync),
+}
+
+/// Does a task.
+pub fn perform(task: Task, means: &Means<'_>) -> Answer {
+    match task {
+        Task::Read(source, edition) => Answer::Read(read_source(&source, edition)),
+        Task::Prepare(world, tried, edition) => Answer::Prepared(prepare(&world, &tried, edition)),
+        Task::Solve { world, scenario, budget } => {
+            let deadline = Deadline::after(budget);
+            let budget = Budget {
+                boxes: BOXES,
+                stop: &|| (means.stop)() || deadline.is_past(),
+                workers: &means.threads,
+                observer: Some(means.observer),
+            };
+            Answer::Solved(Box::new(scene(&world.original.model, &world.prepared, scenario, &budget)))
+        }
+        Task::Paint(painting) => Answer::Painted(paint(&painting)),
+        Task::Follow { world, scenario, start, until } => {
+            let subject = world.prepared.subject(&world.original.model, scenario).ok();
+            Answer::Followed(subject.map(|mut subject| Arc::new(follow(&mut subject, &start, until, &means.stop))))
+        }
+    }
+}
+
+fn read_source(source: &Source, edition: u64) -> Read {
+    let reading = match source {
+        Source::File(path) => read(Some(path)),
+        Source::Compiled(index) => match COMPILED.get(*index) {
+            Some(model) => compiled(model),
+            None => return Read::Unreadable("there is no such model".to_owned()),
+        },
+    };
+    match reading {
+        Reading::Model(original) => match Prepared::new(&original.model, &[]) {
+            Ok(prepared) => Read::Ready(Arc::new(World { edition, original: *original, prepared })),
+            Err(found) => Read::Wrong(original.model.sources.clone(), found),
+        },
+        Reading::Wrong(sources, found) => Read::Wrong(sources, found),
+        Reading::Unreadable(reason) => Read::Unreadable(reason),
+    }
+}
+
+/// The model with the tried scenario at its end, in the search box of the file.
+fn prepare(world: &World, tried: &TriedSet, edition: u64) -> Result<Arc<World>, String> {
+    let Original { model, sha256, tables } = &world.original;
+    let model = model.with_values_over(tried.base, &tried.values);
+    match Prepared::new(&model, &[]) {
+        Ok(mut prepared) => {
+            prepared.bounds.clone_from(&world.prepared.bounds);
+            let original = Original { model, sha256: sha256.clone(), tables: tables.clone() };
+            Ok(Arc::new(World { edition, original, prepared }))
+        }
+        Err(found) => Err(found.first().map_or_else(String::new, |problem| problem.message.clone())),
+    }
+}
+
+fn paint(painting: &Painting) -> Option<Arc<Picture>> {
+    let Painting { world, scene, slice, window, plot } = painting;
+    let solved = scene.solved()?;
+    let mut subject = world.prepared.subject(&world.original.model, scene.0.scenario).ok()?;
+    let view =
+        View { model: &world.original.model, scenario: scene.0.scenario, solved, ids: &[], slice, window: *window };
+    Some(Arc::new(Picture::new(&mut subject, &view, plot)))
+}
