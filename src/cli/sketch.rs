@@ -1,6 +1,6 @@
 //! `restpoint sketch`: the direction field of each scenario as text.
 
-use crate::analysis::field::{Slice, Window};
+use crate::analysis::field::{LINEAR, Slice, Window};
 use crate::analysis::prepare::Prepared;
 use crate::analysis::subject::Subject;
 use crate::diag::Diagnostic;
@@ -123,7 +123,8 @@ impl Drawer<'_> {
         let system = &self.prepared.system;
         let mut subject = Subject::new(self.model, &system.graph, &system.plans[*plan], sides.to_vec());
         let slice = Slice::new(&subject, self.axes, &solved.equilibria, &solved.assessment);
-        let view = View { model: self.model, scenario: scene.scenario, solved, ids, slice: &slice, window };
+        let scales = LINEAR;
+        let view = View { model: self.model, scenario: scene.scenario, solved, ids, slice: &slice, window, scales };
         let plot = Plot::of(self.size.unwrap_or_else(|| self.fitting(&view)));
         let picture = Picture::new(&mut subject, &view, &plot);
         text(&view, &picture, self.page())

@@ -33,7 +33,7 @@ fn main() {
     let frame = Frame::new(WINDOW, COLUMNS, ROWS);
     let values: [f64; 8] = [0.9, 900.0, 0.012, 0.02, 0.25, 0.3, 0.35, 1.0];
     let octants = |x: &[f64], y: &[f64]| {
-        let cells = x.iter().zip(y).filter_map(|(&x, &y)| Octant::of(frame.seen([x, y])));
+        let cells = x.iter().zip(y).filter_map(|(&x, &y)| Octant::of(frame.seen([1.0, 1.0], [x, y])));
         cells.map(|octant| octant.index() as f64).sum::<f64>()
     };
     let mut out = [vec![0.0; CELLS], vec![0.0; CELLS]];

@@ -6,7 +6,7 @@
 use nalgebra::Complex;
 use restpoint::analysis::assess::{Assessed, Assessment};
 use restpoint::analysis::equilibria::{Budget, OneByOne, all};
-use restpoint::analysis::field::{Slice, Window};
+use restpoint::analysis::field::{LINEAR, Scale, Slice, Window};
 use restpoint::analysis::linearise::{Dimensions, Kind, Linearisation};
 use restpoint::analysis::measures::Measures;
 use restpoint::analysis::subject::Subject;
@@ -16,7 +16,7 @@ use restpoint::model::load::{NoFiles, load};
 use restpoint::model::system::System;
 use restpoint::model::system::bounds::Bound;
 use restpoint::num::eigen::{Spectrum, Vectors};
-use restpoint::report::sketch::{Canvas, Picture, Plot, Size, Style, View, draw, text, window};
+use restpoint::report::sketch::{Canvas, Extras, Picture, Plot, Size, Style, View, draw, fit, text};
 use restpoint::report::table::{Page, Solved, identify};
 
 /// A model with its equations.
@@ -69,15 +69,16 @@ impl Loaded {
         let axes = seen.axes.unwrap_or_else(|| Slice::axes(&self.model));
         let mut subject = self.subject(seen.scenario);
         let slice = Slice::new(&subject, axes, &solved.equilibria, &solved.assessment);
-        let window = seen.window.unwrap_or_else(|| window(&self.model, &self.bounds, &[&solved], axes));
-        let view =
-            View { model: &self.model, scenario: seen.scenario, solved: &solved, ids: &ids, slice: &slice, window };
+        let scales = seen.scales;
+        let window = seen.window.unwrap_or_else(|| fit(&self.model, &self.bounds, &[&solved], axes, scales));
+        let scenario = seen.scenario;
+        let view = View { model: &self.model, scenario, solved: &solved, ids: &ids, slice: &slice, window, scales };
         let picture = Picture::new(&mut subject, &view, &Plot::of(seen.size));
         use_it(&view, &picture)
     }
 
     pub fn canvas(&self, seen: Seen, style: Style) -> Canvas {
-        self.with(seen, |view, picture| draw(view, picture, style))
+        self.with(seen, |view, picture| draw(view, picture, &Extras::default(), style))
     }
 
     pub fn text(&self, seen: Seen, style: Style) -> String {
@@ -92,10 +93,12 @@ pub struct Seen {
     pub scenario: usize,
     pub axes: Option<[usize; 2]>,
     pub window: Option<Window>,
+    pub scales: [Scale; 2],
     pub size: Size,
 }
 
-pub const USUAL: Seen = Seen { scenario: 0, axes: None, window: None, size: Size { columns: 80, rows: 24 } };
+pub const USUAL: Seen =
+    Seen { scenario: 0, axes: None, window: None, scales: LINEAR, size: Size { columns: 80, rows: 24 } };
 
 /// The linear part of a planar model at a state.
 fn planar(subject: &mut Subject<'_>, state: &[f64]) -> Linearisation {

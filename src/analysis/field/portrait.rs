@@ -1,8 +1,8 @@
 //! Everything that a plane shows, for one frame.
 
-use super::divide::branch;
+use super::divide::Plane;
 use super::straight::{Straight, straight};
-use super::{Flow, Frame, Motion};
+use super::{Flow, Frame, Motion, Slice};
 use crate::analysis::assess::Assessment;
 use crate::analysis::equilibria::Equilibria;
 use crate::analysis::linearise::{Kind, Linearisation};
@@ -19,7 +19,8 @@ pub struct Portrait {
     pub zero_growth: [Vec<bool>; 2],
     /// Straight paths, each with the index of its equilibrium; of those in the slice and in the window.
     pub straight: Vec<(usize, Straight)>,
-    /// The lines that lead into a saddle from both sides, as points in the units of the axes.
+    /// The lines that lead into a saddle from both sides, as far as they are in the window, as points in the units of the
+    /// axes; near enough to each other to be drawn as they are.
     pub divides: Vec<Vec<[f64; 2]>>,
 }
 
@@ -39,19 +40,20 @@ pub fn portrait(
     for (index, (equilibrium, linear)) in found.list.iter().zip(linears).enumerate() {
         let Some(linear) = linear else { continue };
         let place = slice.project(&equilibrium.state);
-        if !slice.has(&equilibrium.state) || !frame.window.holds(place) {
+        if !slice.has(&equilibrium.state) {
             continue;
         }
         let through = straight(linear, slice, is_map);
         if subject.species() == 2 && !is_map && is_simple_saddle(linear) {
-            let toward = through.iter().filter(|line| line.approaches).filter(|line| divides_any(line, place));
             let others = others(flow, found, index);
-            for sign in toward.flat_map(|line| [line.along, line.along.map(|part| -part)]) {
-                let points = branch(flow, &frame, place, sign, &others);
-                divides.extend((points.len() > 1).then_some(points));
-            }
+            let plane = Plane { flow, frame: &frame, region: region(subject, slice, &frame), others: &others };
+            let toward = through.iter().filter(|line| line.approaches).filter(|line| divides_any(line, place));
+            let both = toward.flat_map(|line| [line.along, line.along.map(|part| -part)]);
+            divides.extend(both.flat_map(|toward| plane.branch(place, toward)));
         }
-        lines.extend(through.into_iter().map(|line| (index, line)));
+        if frame.window.holds(place) {
+            lines.extend(through.into_iter().map(|line| (index, line)));
+        }
     }
     let zero_growth = [0, 1].map(|axis| flow.zero_growth(axis, &frame));
     Portrait { motion: flow.motion(&frame), frame, zero_growth, straight: lines, divides }
@@ -68,6 +70,19 @@ fn divides_any(line: &Straight, place: [f64; 2]) -> bool {
     let size = x.hypot(y);
     let runs_along = |absent: f64, part: f64| absent == 0.0 && part.abs() <= super::straight::ROUNDING * size;
     !runs_along(place[0], x) && !runs_along(place[1], y)
+}
+
+/// How many times the width of the box, or of the window, a line may lead away and still come back.
+const AWAY: f64 = 2.0;
+
+/// Where lines are followed: the search box and the window, with room around.
+fn region(subject: &Subject<'_>, slice: &Slice, frame: &Frame) -> [[f64; 2]; 2] {
+    let around = |species: usize, window: [f64; 2]| {
+        let [low, high] = subject.sides.get(species).copied().unwrap_or(window);
+        let (low, high) = (low.min(window[0]), high.max(window[1]));
+        [0.0f64.min(low), high + AWAY * (high - low)]
+    };
+    [around(slice.x, frame.window.x), around(slice.y.unwrap_or(slice.x), frame.window.y)]
 }
 
 fn others(flow: &Flow, found: &Equilibria, index: usize) -> Vec<[f64; 2]> {

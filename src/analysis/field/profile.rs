@@ -1,6 +1,6 @@
 //! A single species: its rate against its abundance.
 
-use super::{Flow, Frame, Window, rounded};
+use super::{Flow, Frame, Scale, Window, rounded};
 
 /// The rate of a single species in every column of a frame.
 #[derive(Clone, Debug, PartialEq)]
@@ -11,9 +11,10 @@ pub struct Profile {
     pub rates: Vec<Option<f64>>,
 }
 
-/// The profile between two abundances; the height is chosen so that every rate, and 0, fits.
-pub fn profile(flow: &Flow, x: [f64; 2], columns: usize, rows: usize) -> Profile {
-    let line = Frame::new(Window { x, y: [0.0, 1.0] }, columns, 2);
+/// The profile between two abundances; the height is chosen so that every rate, and 0, fits, on a linear scale.
+pub fn profile(flow: &Flow, x: [f64; 2], scale: Scale, columns: usize, rows: usize) -> Profile {
+    let scales = [scale, Scale::Linear];
+    let line = Frame::scaled(Window { x, y: [0.0, 1.0] }, scales, columns, 2);
     let motion = flow.motion(&line);
     let rates: Vec<Option<f64>> = motion.x[..line.columns].iter().map(|&x| x.is_finite().then_some(x)).collect();
     let known = || rates.iter().flatten().copied();
@@ -22,5 +23,5 @@ pub fn profile(flow: &Flow, x: [f64; 2], columns: usize, rows: usize) -> Profile
         (0.0, 0.0) => [-1.0, 1.0],
         _ => [-rounded(-low), rounded(high)],
     };
-    Profile { frame: Frame::new(Window { x, y }, columns, rows), rates }
+    Profile { frame: Frame::scaled(Window { x, y }, scales, columns, rows), rates }
 }

@@ -1,13 +1,14 @@
 //! Where paths go: what an unstable state gives way to, and where today's stocks lead. Numerical results, never proofs.
 //!
 //! [`Paths`] is the way in, and for single questions [`settles()`] and [`from_now()`]; [`follow()`] records a path for
-//! drawing. `grounds` keeps what paths on one face share, `face` has the equations in the coordinates in which they are
+//! drawing, `between` reads it. `grounds` keeps what paths on one face share, `face` has the equations in the coordinates in which they are
 //! followed, `walk` takes steps until someone is lost, `trail` keeps them; `settle` and `maps` go on until it is clear where
 //! a path ends: in a `basin`, or on a turn that `returns`, which `cycle` measures. `cloud` draws starts from the survey,
 //! `flock` follows them all at once.
 
 mod basin;
 mod beside;
+mod between;
 mod cloud;
 mod cycle;
 mod face;

@@ -1,9 +1,11 @@
 //! What stands in which cell: a pure function of the numbers and the style.
 //!
-//! What matters more is drawn over what matters less: states, today's stocks, straight paths, divides, zero growth, flow.
+//! What matters more is drawn over what matters less: the point and states, today's stocks, paths from the point, straight
+//! paths, divides, zero growth, flow.
 
 use super::signs::{Growth, Mark, flow, spacing};
-use super::{Picture, Style, View};
+use super::trace::Trace;
+use super::{Extras, Picture, Style, View};
 use crate::analysis::field::{Frame, Octant, Portrait, Profile, Straight, nearest};
 
 /// A straight path is drawn over this share of the frame's smaller side to either side, in widths of a column.
@@ -50,15 +52,19 @@ impl Canvas {
     }
 }
 
-/// Draws a picture.
-pub fn draw(view: &View<'_>, picture: &Picture, style: Style) -> Canvas {
+/// Draws a picture, and over it what the user asked for.
+pub fn draw(view: &View<'_>, picture: &Picture, extras: &Extras<'_>, style: Style) -> Canvas {
     let frame = picture.frame();
     let mut canvas = Canvas::new(frame);
     match picture {
         Picture::Plane(portrait) => plane(&mut canvas, view, portrait),
         Picture::Line(profile) => line(&mut canvas, profile),
     }
-    states(&mut canvas, view, frame);
+    paths(&mut canvas, view, extras, frame);
+    states(&mut canvas, view, extras.chosen, frame);
+    if let Some(cell) = extras.point.and_then(|point| frame.cell(view.on_axes(point))) {
+        canvas.put(cell, Mark::Point);
+    }
     // Last, and only where there is room: a sign that something else cuts in two would read as another.
     match picture {
         Picture::Plane(portrait) => flow_in_plane(&mut canvas, portrait, style),
@@ -83,9 +89,10 @@ fn plane(canvas: &mut Canvas, view: &View<'_>, portrait: &Portrait) {
 
 fn flow_in_plane(canvas: &mut Canvas, portrait: &Portrait, style: Style) {
     let frame = &portrait.frame;
+    let seen = Seen::new(frame);
     directions(canvas, style, 0..frame.rows, |column, row| {
         let cell = row * frame.columns + column;
-        Octant::of(frame.seen([portrait.motion.x[cell], portrait.motion.y[cell]]))
+        Octant::of(seen.at(column, row, [portrait.motion.x[cell], portrait.motion.y[cell]]))
     });
 }
 
@@ -124,14 +131,12 @@ fn directions(
 
 /// Both halves of a straight path, each with the tip of its arrow at the end that the state moves to.
 fn straight(canvas: &mut Canvas, frame: &Frame, middle: [f64; 2], line: &Straight) {
-    let seen = frame.seen(line.along);
-    let length = seen[0].hypot(seen[1]);
+    let seen = frame.seen(middle, line.along);
     let smaller = frame.columns.min(2 * frame.rows) as f64;
     let reach = (SHARE * smaller).clamp(REACH[0], REACH[1]);
     for sign in [1.0, -1.0] {
-        let outwards = seen.map(|part| sign * part / length);
-        let Some(octant) = Octant::of(outwards) else { continue };
-        let cells = half(frame, middle, outwards, reach);
+        let Some(octant) = Octant::of(seen.map(|part| sign * part)) else { continue };
+        let cells = half(frame, middle, line.along.map(|part| sign * part), reach);
         let tip = if line.approaches { 0 } else { cells.len().saturating_sub(1) };
         let towards = if line.approaches { octant.opposite() } else { octant };
         for (place, cell) in cells.into_iter().enumerate() {
@@ -140,18 +145,25 @@ fn straight(canvas: &mut Canvas, frame: &Frame, middle: [f64; 2], line: &Straigh
     }
 }
 
-/// The cells along one half of a straight path, from the equilibrium outwards, without its own.
-fn half(frame: &Frame, middle: [f64; 2], outwards: [f64; 2], reach: f64) -> Vec<[usize; 2]> {
-    let [x, y] = frame.unseen(outwards);
-    let far = (0..=nearest(2.0 * reach, frame.columns)).map(|step| step as f64 / 2.0);
-    let mut cells = course(far.filter_map(|far| frame.cell([middle[0] + far * x, middle[1] + far * y])));
+/// The cells along one half of a straight path, from the equilibrium outwards, without its own. On logarithmic axes it is
+/// a curve.
+fn half(frame: &Frame, middle: [f64; 2], along: [f64; 2], reach: f64) -> Vec<[usize; 2]> {
+    let at = |far: f64| [0, 1].map(|i: usize| middle[i] + far * along[i]);
+    let mut far = 0.0;
+    let mut points = vec![middle];
+    for _ in 0..nearest(2.0 * reach, frame.columns) {
+        let [x, y] = frame.seen(at(far), along);
+        far += 0.5 / x.hypot(y);
+        points.push(at(far));
+    }
+    let mut cells = course(points.into_iter().filter_map(|point| frame.cell(point)));
     cells.retain(|&cell| Some(cell) != frame.cell(middle));
     cells
 }
 
 /// The cells that a line runs through, one to a step: where it goes around a corner by way of a cell between two that
 /// touch at their corners, that cell is left out.
-fn course(cells: impl Iterator<Item = [usize; 2]>) -> Vec<[usize; 2]> {
+pub(super) fn course(cells: impl Iterator<Item = [usize; 2]>) -> Vec<[usize; 2]> {
     let touch = |a: [usize; 2], b: [usize; 2]| a[0].abs_diff(b[0]) <= 1 && a[1].abs_diff(b[1]) <= 1;
     let mut course: Vec<[usize; 2]> = Vec::new();
     for cell in cells {
@@ -201,44 +213,92 @@ fn flow_on_line(canvas: &mut Canvas, profile: &Profile, style: Style) {
     });
 }
 
-/// Today's stocks and the equilibria, the stable ones last, with their names where there is room.
-fn states(canvas: &mut Canvas, view: &View<'_>, frame: &Frame) {
+/// The paths to and from the user's point, with the moments on them.
+fn paths(canvas: &mut Canvas, view: &View<'_>, extras: &Extras<'_>, frame: &Frame) {
+    for (path, mark) in [(extras.backwards, Mark::Backwards), (extras.forwards, Mark::Forwards)] {
+        let Some(path) = path else { continue };
+        let trace = Trace::new(view, frame, path);
+        trace.cells.iter().for_each(|&cell| canvas.put(cell, mark));
+        for (number, cell) in trace.moments {
+            if !matches!(canvas.at(cell[0], cell[1]), Mark::Moment(_)) {
+                canvas.put(cell, Mark::Moment(number));
+            }
+        }
+    }
+}
+
+/// Today's stocks and the equilibria, the stable ones last and the selected one last of all, with their names where there
+/// is room.
+fn states(canvas: &mut Canvas, view: &View<'_>, chosen: Option<usize>, frame: &Frame) {
     if let Some(cell) = view.now().and_then(|now| frame.cell(now)) {
         canvas.put(cell, Mark::Now);
     }
     let mut shown: Vec<(usize, [usize; 2])> =
         view.in_slice().filter_map(|index| Some((index, frame.cell(view.place(index)?)?))).collect();
-    shown.sort_by_key(|&(index, _)| view.is_stable(index));
+    shown.sort_by_key(|&(index, _)| (chosen == Some(index), view.is_stable(index)));
     for &(index, cell) in &shown {
-        canvas.put(cell, Mark::State(view.look(index)));
+        let look = view.look(index);
+        canvas.put(cell, if chosen == Some(index) { Mark::Chosen(look) } else { Mark::State(look) });
     }
     // Names in the other order, so that the state on top of a cell has the first place.
     let mut named: Vec<[usize; 2]> = Vec::new();
     for &(index, cell) in shown.iter().rev() {
         if !named.contains(&cell) {
             named.push(cell);
-            name(canvas, cell, view.ids.get(index).map_or("", String::as_str));
+            let id = view.ids.get(index).map_or("", String::as_str);
+            let letters: Vec<Mark> = if chosen == Some(index) {
+                format!("[{id}]").chars().map(Mark::ChosenLetter).collect()
+            } else {
+                id.chars().map(Mark::Letter).collect()
+            };
+            name(canvas, cell, &letters);
         }
     }
 }
 
 /// Writes a name to the right of a cell, else to the left, else above or below; nowhere over a state or another name.
-fn name(canvas: &mut Canvas, [column, row]: [usize; 2], id: &str) {
-    let length = id.chars().count();
+fn name(canvas: &mut Canvas, [column, row]: [usize; 2], letters: &[Mark]) {
+    let length = letters.len();
     let beside = [Some(column + 1), column.checked_sub(length)].map(|start| (start, Some(row)));
-    let over = [row.checked_add(1), row.checked_sub(1)].map(|row| (Some(column), row));
+    // Above and below it may have to move to the left to stay inside.
+    let inside = column.min(canvas.columns.saturating_sub(length));
+    let over = [row.checked_add(1), row.checked_sub(1)].map(|row| (Some(inside), row));
     let places = beside.into_iter().chain(over).filter_map(|(start, row)| Some([start?, row?]));
     let is_free = |[start, row]: [usize; 2]| {
-        let is_taken = |c| matches!(canvas.at(c, row), Mark::State(_) | Mark::Now | Mark::Letter(_));
+        let is_taken = |c| {
+            let mark = canvas.at(c, row);
+            matches!(mark, Mark::State(_) | Mark::Chosen(_) | Mark::Now | Mark::Letter(_) | Mark::ChosenLetter(_))
+        };
         start + length <= canvas.columns && row < canvas.rows && !(start..start + length).any(is_taken)
     };
     let is_quiet = |&[start, row]: &[usize; 2]| {
-        let loud = |c| matches!(canvas.at(c, row), Mark::Straight(..) | Mark::Divide | Mark::Growth(_) | Mark::Rate);
+        let loud = |c| {
+            let mark = canvas.at(c, row);
+            matches!(mark, Mark::Straight(..) | Mark::Divide | Mark::Growth(_) | Mark::Rate | Mark::Forwards)
+        };
         !(start..start + length).any(loud)
     };
     let places: Vec<[usize; 2]> = places.filter(|&place| is_free(place)).collect();
     let Some(&[start, row]) = places.iter().find(|place| is_quiet(place)).or(places.first()) else { return };
-    for (place, letter) in id.chars().enumerate() {
-        canvas.put([start + place, row], Mark::Letter(letter));
+    for (place, &letter) in letters.iter().enumerate() {
+        canvas.put([start + place, row], letter);
+    }
+}
+
+/// What velocities in the middle of cells look like: the stretch of an axis depends on the place along that axis alone.
+struct Seen {
+    across: Vec<f64>,
+    up: Vec<f64>,
+}
+
+impl Seen {
+    fn new(frame: &Frame) -> Self {
+        let across = (0..frame.columns).map(|c| frame.stretch([frame.x(c as f64), frame.window.y[0]])[0]);
+        let up = (0..frame.rows).map(|r| frame.stretch([frame.window.x[0], frame.y(r as f64)])[1]);
+        Self { across: across.collect(), up: up.collect() }
+    }
+
+    fn at(&self, column: usize, row: usize, [x, y]: [f64; 2]) -> [f64; 2] {
+        [x * self.across[column], y * self.up[row]]
     }
 }

@@ -1,12 +1,13 @@
-//! What the signs of a drawing mean, as far as they occur in it, and which equilibria are where.
+//! What is said below a drawing: its signs, as far as they occur in it, which equilibria are where, what is not in it.
 
 use super::canvas::Canvas;
-use super::signs::{Growth, Mark, flow, listed};
-use super::{Picture, Style, View};
+use super::meanings::{Meaning, meanings};
+use super::signs::listed;
+use super::{Picture, View};
 use crate::analysis::equilibria::Equilibria;
 use crate::analysis::field::Held;
 use crate::analysis::linearise::{Kind, Unavailable};
-use crate::model::{Model, TimeKind};
+use crate::model::Model;
 use crate::report::table::{Page, human};
 
 /// Equilibria that are listed one a line; communities have hundreds.
@@ -19,78 +20,21 @@ const INDENT: usize = 6;
 /// The legend of a drawing.
 pub(super) fn legend(view: &View<'_>, picture: &Picture, canvas: &Canvas, page: &Page) -> String {
     let mut text = String::new();
-    for (sign, meaning) in signs(view, picture, canvas, page.style) {
-        text.push_str(&page.paragraph(&format!("  {sign}"), &meaning, INDENT));
+    for Meaning { sign, long, .. } in meanings(view, picture, canvas, page.style) {
+        text.push_str(&page.paragraph(&format!("  {sign}"), &long, INDENT));
     }
     let shown: Vec<usize> = view.in_slice().collect();
     for &index in shown.iter().take(MOST_LISTED) {
         text.push_str(&equilibrium(view, picture, index, page));
     }
-    for note in notes(view, &shown) {
+    for note in notes(view, picture, &shown) {
         text.push_str(&page.paragraph("", &note, 2));
     }
     text
 }
 
-/// The signs that occur, with their meanings.
-fn signs(view: &View<'_>, picture: &Picture, canvas: &Canvas, style: Style) -> Vec<(String, String)> {
-    let is_map = matches!(view.model.time, TimeKind::Discrete { .. });
-    let has = |wanted: &dyn Fn(Mark) -> bool| canvas.marks().find(|&mark| wanted(mark));
-    let mut signs: Vec<(String, String)> = Vec::new();
-    let mut add = |mark: Option<Mark>, meaning: String| {
-        if let Some(mark) = mark {
-            let sign = match mark {
-                Mark::Flow(octant, _) => flow(octant, style).to_owned(),
-                Mark::Straight(..) if style == Style::Ascii => "-->".to_owned(),
-                mark => mark.glyph(style).to_string(),
-            };
-            signs.push((sign, meaning));
-        }
-    };
-    let flow = if is_map { "what one step adds to the state" } else { "which way the state moves" };
-    add(has(&|mark| matches!(mark, Mark::Flow(..))), flow.to_owned());
-    if let Picture::Line(_) = picture {
-        add(has(&|mark| mark == Mark::Rate), rate(view));
-    }
-    let name = |species: Option<usize>| species.map_or(String::new(), |species| symbol(view.model, species));
-    let still = |who: String| format!("growth of {who} per head is 0");
-    let (x, y) = (name(Some(view.slice.x)), name(view.slice.y));
-    add(has(&|mark| mark == Mark::Growth(Growth::Across)), still(x.clone()));
-    add(has(&|mark| mark == Mark::Growth(Growth::Upwards)), still(y.clone()));
-    add(has(&|mark| mark == Mark::Growth(Growth::Both)), still(format!("{x} and of {y}")));
-    let straight = "straight path of the linear part, into or out of its equilibrium";
-    add(has(&|mark| matches!(mark, Mark::Straight(_, true))), straight.to_owned());
-    let divide = "leads into a saddle; the paths on its two sides part there";
-    add(has(&|mark| mark == Mark::Divide), divide.to_owned());
-    let today = view.now().map_or(String::new(), |now| at(view, now));
-    add(
-        has(&|mark| mark == Mark::Now),
-        format!("today's stocks: {today}{}", if stays(view) { "" } else { "; other species are not as held here" }),
-    );
-    signs
-}
-
-/// Whether the stocks of all species that are held are known to be as they are held.
-fn stays(view: &View<'_>) -> bool {
-    let mut now = view.slice.held.clone();
-    let held: Vec<usize> = (0..now.len()).filter(|&i| view.slice.holds(i)).collect();
-    for &i in &held {
-        let Some(survey) = view.model.now.iter().find(|survey| survey.species.0 == i) else { return false };
-        now[i] = survey.value;
-    }
-    view.slice.has(&now)
-}
-
-fn rate(view: &View<'_>) -> String {
-    let symbol = symbol(view.model, view.slice.x);
-    match view.model.time {
-        TimeKind::Continuous => format!("d{symbol}/dt, the rate of change, against {symbol}"),
-        TimeKind::Discrete { .. } => format!("next {symbol} - {symbol}, what one step adds, against {symbol}"),
-    }
-}
-
 /// A place along the axes, as `P = 88.57, D = 78.57`.
-fn at(view: &View<'_>, [x, y]: [f64; 2]) -> String {
+pub(super) fn at(view: &View<'_>, [x, y]: [f64; 2]) -> String {
     let across = format!("{} = {}", symbol(view.model, view.slice.x), human(x));
     match view.slice.y {
         Some(up) => format!("{across}, {} = {}", symbol(view.model, up), human(y)),
@@ -108,7 +52,10 @@ fn equilibrium(view: &View<'_>, picture: &Picture, index: usize, page: &Page) ->
     let there = if found.proven { "proved" } else { "numerical" };
     let mut said = format!("{id}: {}, {there}; {}", at(view, place), kind(view, index));
     let frame = picture.frame();
-    match frame.cell(if view.slice.y.is_some() { place } else { [place[0], 0.0] }) {
+    match frame.cell(view.on_axes(place)) {
+        None if frame.is_beyond_logarithms(view.on_axes(place)) => {
+            said += "; not drawn, for a logarithmic axis has no 0";
+        }
         None => said += "; outside the part that is drawn",
         Some(cell) => {
             let other = |&other: &usize| other != index && view.place(other).and_then(|p| frame.cell(p)) == Some(cell);
@@ -134,7 +81,7 @@ fn kind(view: &View<'_>, index: usize) -> String {
 }
 
 /// What is not in the drawing, and what is known of the list.
-fn notes(view: &View<'_>, shown: &[usize]) -> Vec<String> {
+fn notes(view: &View<'_>, picture: &Picture, shown: &[usize]) -> Vec<String> {
     let found = &view.solved.equilibria;
     let mut notes = Vec::new();
     let elsewhere: Vec<&str> = (0..found.list.len())
@@ -153,7 +100,7 @@ fn notes(view: &View<'_>, shown: &[usize]) -> Vec<String> {
     }
     notes.push(complete(found).to_owned());
     if let (Some(now), Some(_)) = (view.now(), view.slice.y)
-        && !view.window.holds(now)
+        && !picture.frame().window.holds(now)
     {
         notes.push(format!("Today's stocks, {}, lie outside the part that is drawn.", at(view, now)));
     }

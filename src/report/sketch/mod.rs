@@ -1,28 +1,41 @@
 //! `restpoint sketch`: the direction field of a scenario in characters.
 //!
 //! [`View`] says what is looked at, [`Plot`] where in a given size its cells are, [`Picture`] holds the numbers for them,
-//! [`draw`] chooses what stands in each cell, [`text()`] writes it all out. Each is a pure function of what it is given, so
-//! that a screen can use them as well. To draw something more: a [`Mark`] in `signs`, its place in `canvas`, its meaning in
-//! `legend`.
+//! [`draw`] chooses what stands in each cell, [`drawing`] lays it between its axes as a grid, [`text()`] writes it all out
+//! with a legend. A screen takes the grid, [`signs_used`] for a line below it, and draws [`Extras`] over the picture: what is
+//! selected, a point that moves, the paths from and to it; [`ends`] and [`came_from`] say in a sentence where those lead. Each
+//! is a pure function of what it is given. To draw something more: a [`Mark`] in `signs`, its place in `canvas`, its meaning
+//! in `meanings`.
 
 mod canvas;
+mod drawing;
+mod ending;
 mod legend;
+mod meanings;
 mod plot;
 mod signs;
 mod text;
 mod ticks;
+mod trace;
 
 pub use canvas::{Canvas, draw};
+pub use drawing::{drawing, place_in_drawing, point_in_drawing};
+pub use ending::{came_from, ends};
+pub use meanings::signs_used;
 pub use plot::{LARGEST, Plot, SMALLEST, Size, legend_rows};
 pub use signs::{Growth, Mark, flow, spacing};
 pub use text::{closing, heading, text};
 pub use ticks::{Tick, across, round_numbers, upwards};
+pub use trace::Trace;
 
 pub use super::check::Style;
 
 use super::kinds::{self, Look};
 use super::table::Solved;
-use crate::analysis::field::{Flow, Frame, Portrait, Profile, Slice, Window, around, portrait, profile};
+use crate::analysis::field::{
+    Flow, Frame, LINEAR, Portrait, Profile, Scale, Slice, Window, above_zero, around, portrait, profile,
+};
+use crate::analysis::paths::Path;
 use crate::analysis::subject::Subject;
 use crate::model::Model;
 use crate::model::system::bounds::{Bound, HEADROOM};
@@ -42,6 +55,21 @@ pub struct View<'v> {
     pub slice: &'v Slice,
     /// What part of it; of a single species only the horizontal sides count.
     pub window: Window,
+    /// How abundances lie along its axes; of a single species only the first counts.
+    pub scales: [Scale; 2],
+}
+
+/// What is drawn over a picture.
+#[derive(Clone, Copy, Debug, Default)]
+pub struct Extras<'e> {
+    /// The selected equilibrium, by index: drawn over all others, its name in brackets.
+    pub chosen: Option<usize>,
+    /// The point that the user moves, along the axes; of a single species its second number is of no account.
+    pub point: Option<[f64; 2]>,
+    /// The path from it, states of all species.
+    pub forwards: Option<&'e Path>,
+    /// The path that leads to it.
+    pub backwards: Option<&'e Path>,
 }
 
 /// The numbers that are drawn.
@@ -58,9 +86,9 @@ impl Picture {
     pub fn new(subject: &mut Subject<'_>, view: &View<'_>, plot: &Plot) -> Self {
         let flow = Flow::new(subject, view.slice.clone());
         if view.slice.y.is_none() {
-            return Self::Line(profile(&flow, view.window.x, plot.columns, plot.rows));
+            return Self::Line(profile(&flow, view.window.x, view.scales[0], plot.columns, plot.rows));
         }
-        let frame = Frame::new(view.window, plot.columns, plot.rows);
+        let frame = Frame::scaled(view.window, view.scales, plot.columns, plot.rows);
         let Solved { equilibria, assessment, .. } = view.solved;
         Self::Plane(portrait(subject, &flow, frame, equilibria, assessment))
     }
@@ -104,12 +132,18 @@ impl View<'_> {
     }
 }
 
+/// [`fit`] with linear axes.
+pub fn window(model: &Model, bounds: &[Bound], scenes: &[&Solved], axes: [usize; 2]) -> Window {
+    fit(model, bounds, scenes, axes, LINEAR)
+}
+
 /// The part of the plane that holds every equilibrium of some scenarios, and today's stocks, with a margin; within the
 /// search box. One window for all, so that the sketches can be compared.
 ///
-/// Along a species that is nowhere present it reaches to the level that the box was chosen by, else to the box's side.
-pub fn window(model: &Model, bounds: &[Bound], scenes: &[&Solved], [x, y]: [usize; 2]) -> Window {
-    let along = |species: usize| {
+/// Along a species that is nowhere present it reaches to the level that the box was chosen by, else to the box's side. A
+/// logarithmic axis begins as [`above_zero`] has it: a state without the species is outside.
+pub fn fit(model: &Model, bounds: &[Bound], scenes: &[&Solved], [x, y]: [usize; 2], scales: [Scale; 2]) -> Window {
+    let along = |species: usize, scale: Scale| {
         let states = scenes.iter().flat_map(|solved| &solved.equilibria.list).filter_map(|e| e.state.get(species));
         let now = model.now.iter().filter(|survey| survey.species.0 == species).map(|survey| &survey.value);
         let Some(bound) = bounds.get(species) else { return [0.0, 1.0] };
@@ -118,7 +152,16 @@ pub fn window(model: &Model, bounds: &[Bound], scenes: &[&Solved], [x, y]: [usiz
         if bound.chosen && seen.iter().all(|&x| x <= bound.lower) {
             seen.push(bound.upper / HEADROOM);
         }
-        around(sides, seen.into_iter())
+        match scale {
+            Scale::Linear => around(sides, seen.into_iter()),
+            Scale::Logarithmic => above_zero(sides, seen.into_iter()),
+        }
     };
-    Window { x: along(x), y: along(y) }
+    Window { x: along(x, scales[0]), y: along(y, scales[1]) }
+}
+
+/// The search box along two species: as far as a window may be zoomed and moved.
+pub fn limit(bounds: &[Bound], axes: [usize; 2]) -> Window {
+    let [x, y] = axes.map(|species| bounds.get(species).map_or([0.0, 1.0], |bound| [bound.lower, bound.upper]));
+    Window { x, y }
 }

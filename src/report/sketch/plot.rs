@@ -19,7 +19,7 @@ pub const LARGEST: Size = Size { columns: 1000, rows: 1000 };
 /// Characters of the numbers along the vertical axis.
 pub(super) const LABEL: usize = 7;
 /// The caption above, and below the axis, its numbers and its caption.
-const LINES: usize = 4;
+pub(super) const LINES: usize = 4;
 
 /// The cells of a drawing.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]

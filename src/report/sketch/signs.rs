@@ -3,7 +3,8 @@
 //! Of what else there is, each has a sign of its own in either style, so that nothing is told by colour alone.
 
 use super::Style;
-use crate::analysis::field::Octant;
+use crate::analysis::field::{Octant, Slice};
+use crate::report::grid::Ink;
 use crate::report::kinds::{Look, SPIRALS};
 
 /// Whose growth is 0 in a cell.
@@ -34,12 +35,24 @@ pub enum Mark {
     Divide,
     /// A straight path, which way the state moves on it, and whether the tip of its arrow is here.
     Straight(Octant, bool),
+    /// The path from the point that the user moves.
+    Forwards,
+    /// The path that leads to it.
+    Backwards,
+    /// Where a path is after so many units of its scale; 1 to 9.
+    Moment(u8),
     /// Today's stocks.
     Now,
+    /// The point that the user moves.
+    Point,
     /// An equilibrium.
     State(Look),
+    /// The equilibrium that is selected.
+    Chosen(Look),
     /// A letter of an equilibrium's name.
     Letter(char),
+    /// A letter of the selected one's name, and the brackets around it.
+    ChosenLetter(char),
 }
 
 /// Columns from one sign of a direction to the next; with the height of a cell the lattice is about square.
@@ -87,24 +100,29 @@ impl Mark {
             Mark::Growth(Growth::Both) => either('█', '&'),
             Mark::Divide => either('•', '+'),
             Mark::Straight(octant, is_tip) => straight(octant, is_tip, style),
+            Mark::Forwards => either('×', 'x'),
+            Mark::Backwards => '.',
+            Mark::Moment(digit) => char::from_digit(u32::from(digit), 10).unwrap_or('?'),
             Mark::Now => either('◆', '*'),
-            Mark::State(look) => either(look.glyph, look.ascii),
-            Mark::Letter(c) => c,
+            Mark::Point => either('╳', 'X'),
+            Mark::State(look) | Mark::Chosen(look) => either(look.glyph, look.ascii),
+            Mark::Letter(c) | Mark::ChosenLetter(c) => c,
         }
     }
 
-    /// The parameters of the terminal's attribute that repeats what the sign says; `None` for none.
-    ///
-    /// Directions are fainter, states bolder; the two species blue and yellow, which all eyes tell apart.
-    pub fn ink(self) -> Option<&'static str> {
+    /// What it means, for whoever shows it: that repeats what the sign says. The slice says whose growth a curve is.
+    pub fn ink(self, slice: &Slice) -> Ink {
         match self {
-            Mark::Blank | Mark::Level => None,
-            Mark::Flow(..) => Some("2"),
-            Mark::Growth(Growth::Across) | Mark::Rate => Some("34"),
-            Mark::Growth(Growth::Upwards) => Some("33"),
-            Mark::Now => Some("35"),
+            Mark::Blank | Mark::Level => Ink::Plain,
+            Mark::Flow(..) => Ink::Faint,
+            Mark::Growth(Growth::Across) | Mark::Rate => Ink::Species(slice.x),
+            Mark::Growth(Growth::Upwards) => Ink::Species(slice.y.unwrap_or(slice.x)),
+            Mark::Now => Ink::Now,
+            Mark::Point => Ink::Point,
+            Mark::Forwards | Mark::Backwards | Mark::Moment(_) => Ink::Path,
+            Mark::Chosen(_) | Mark::ChosenLetter(_) => Ink::Chosen,
             Mark::Growth(Growth::Both) | Mark::Divide | Mark::Straight(..) | Mark::State(_) | Mark::Letter(_) => {
-                Some("1")
+                Ink::Strong
             }
         }
     }
@@ -140,6 +158,9 @@ mod tests {
                 Mark::Growth(Growth::Both),
                 Mark::Divide,
                 Mark::Now,
+                Mark::Point,
+                Mark::Forwards,
+                Mark::Backwards,
             ];
             signs.extend(others.map(|mark| mark.glyph(style).to_string()));
             let mut states: Vec<String> =

@@ -9,7 +9,7 @@ use std::sync::atomic::{AtomicUsize, Ordering};
 use libfuzzer_sys::fuzz_target;
 use restpoint::analysis::assess::{Assessment, assess};
 use restpoint::analysis::equilibria::{Budget, Equilibria, OneByOne, all};
-use restpoint::analysis::field::Slice;
+use restpoint::analysis::field::{LINEAR, Slice};
 use restpoint::analysis::subject::Subject;
 use restpoint::model::Model;
 use restpoint::model::load::{NoFiles, load};
@@ -88,7 +88,8 @@ fn drawn(
     for ((scene, solved), ids) in scenes.iter().zip(&found).zip(identify(&lists)) {
         let mut subject = Subject::new(model, &system.graph, &system.plans[scene.scenario], sides.to_vec());
         let slice = Slice::new(&subject, axes, &solved.equilibria, &solved.assessment);
-        let view = View { model, scenario: scene.scenario, solved, ids: &ids, slice: &slice, window };
+        let scales = LINEAR;
+        let view = View { model, scenario: scene.scenario, solved, ids: &ids, slice: &slice, window, scales };
         let picture = Picture::new(&mut subject, &view, &Plot::of(Size { columns: 30, rows: 10 }));
         sketch::text(&view, &picture, Page { width: 30, style: Style::Ascii, color: false });
     }
