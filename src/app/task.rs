@@ -4,7 +4,7 @@ use std::sync::Arc;
 
 use super::study::{TriedSet, World};
 use super::{Read, Source};
-use crate::analysis::field::{Slice, Window};
+use crate::analysis::field::{Scale, Slice, Window};
 use crate::analysis::paths::Path;
 use crate::report::sketch::{Picture, Plot};
 use crate::report::table::{Scene, Solved};
@@ -51,6 +51,8 @@ pub struct Painting {
     pub slice: Slice,
     /// The part of the plane.
     pub window: Window,
+    /// How abundances lie along its axes.
+    pub scales: [Scale; 2],
     /// The cells.
     pub plot: Plot,
 }

@@ -10,7 +10,7 @@ use super::study::Slot;
 use super::task::{Found, Painting, Task};
 use super::{App, Screen, Study};
 use crate::analysis::field::{Held, Slice, Window};
-use crate::report::sketch::{Plot, Size, window};
+use crate::report::sketch::{Plot, Size, fit};
 use crate::report::table::Solved;
 
 /// Everything that the present screen needs.
@@ -23,7 +23,7 @@ pub fn wants(app: &App) -> Vec<Task> {
     tasks.extend(preparing(study));
     tasks.extend(searches(app, study));
     if matches!(app.screen, Screen::Equilibria | Screen::Values) {
-        tasks.extend(painting(app, study, study.current, sketch_size(app, study)).map(Task::Paint));
+        tasks.extend(painting(study, study.current, sketch_size(app, study)).map(Task::Paint));
         tasks.extend(paths(study));
     }
     tasks
@@ -55,7 +55,7 @@ pub fn sketch_size(app: &App, study: &Study) -> Size {
 }
 
 /// What the sketch of a slot is; `None` before anything is found.
-pub fn painting(app: &App, study: &Study, slot: usize, size: Size) -> Option<Painting> {
+pub fn painting(study: &Study, slot: usize, size: Size) -> Option<Painting> {
     let (world, scene) = study.slots.get(slot)?.found.clone()?;
     let found = Found(scene);
     let solved = found.solved()?;
@@ -63,8 +63,8 @@ pub fn painting(app: &App, study: &Study, slot: usize, size: Size) -> Option<Pai
     let chosen = if slot == study.current { study.chosen } else { 0 };
     let slice = slice(study, solved, axes, chosen);
     let window = study.sketch.window.unwrap_or_else(|| fitting(study, axes));
-    let _ = app;
-    Some(Painting { world, slice, window, plot: Plot::of(size), scene: found })
+    let scales = study.sketch.scales;
+    Some(Painting { world, slice, window, scales, plot: Plot::of(size), scene: found })
 }
 
 /// The species along the axes.
@@ -75,7 +75,7 @@ pub fn axes(study: &Study) -> [usize; 2] {
 /// The part of the plane that holds the equilibria of all scenarios, and today's stocks.
 pub fn fitting(study: &Study, axes: [usize; 2]) -> Window {
     let solved: Vec<&Solved> = study.slots.iter().filter_map(Slot::solved).collect();
-    window(study.model(), &study.world.prepared.bounds, &solved, axes)
+    fit(study.model(), &study.world.prepared.bounds, &solved, axes, study.sketch.scales)
 }
 
 /// The plane through the selected equilibrium.

@@ -84,10 +84,10 @@ fn prepare(world: &World, tried: &TriedSet, edition: u64) -> Result<Arc<World>, 
 }
 
 fn paint(painting: &Painting) -> Option<Arc<Picture>> {
-    let Painting { world, scene, slice, window, plot } = painting;
+    let Painting { world, scene, slice, window, scales, plot } = painting;
+    let (model, scenario) = (&world.original.model, scene.0.scenario);
     let solved = scene.solved()?;
-    let mut subject = world.prepared.subject(&world.original.model, scene.0.scenario).ok()?;
-    let view =
-        View { model: &world.original.model, scenario: scene.0.scenario, solved, ids: &[], slice, window: *window };
+    let mut subject = world.prepared.subject(model, scenario).ok()?;
+    let view = View { model, scenario, solved, ids: &[], slice, window: *window, scales: *scales };
     Some(Arc::new(Picture::new(&mut subject, &view, plot)))
 }

@@ -1,13 +1,11 @@
 //! Which steady states, and what is each like? The list, the sentence, the numbers and the sketch.
 
 use super::paint::Page;
+use super::sketch::Shown;
 use crate::app::geometry::{self, Area, equilibria};
-use crate::app::task::{Answer, Task};
-use crate::app::wants::{painting, sketch_size};
 use crate::app::{App, Study};
 use crate::report::grid::Ink;
 use crate::report::kinds;
-use crate::report::sketch::{View, draw as draw_sketch};
 use crate::report::table::{Solved, human};
 
 /// The whole screen.
@@ -24,7 +22,10 @@ pub(super) fn draw(app: &App, study: &Study, page: &mut Page<'_>) {
         }
         Some(Ok(solved)) => {
             list(study, solved, page, parts.list);
-            sketch(app, study, solved, page, parts.sketch);
+            if let Some(shown) = Shown::new(app, study, study.current, parts.sketch) {
+                shown.draw(page, parts.sketch);
+                page.words(parts.sentence, &shown.sentence(page), Ink::Plain);
+            }
         }
     }
 }
@@ -44,20 +45,5 @@ fn list(study: &Study, solved: &Solved, page: &mut Page<'_>, area: Area) {
         if place == study.chosen {
             page.row(area, row, Ink::Chosen);
         }
-    }
-}
-
-fn sketch(app: &App, study: &Study, solved: &Solved, page: &mut Page<'_>, area: Area) {
-    let Some(painting) = painting(app, study, study.current, sketch_size(app, study)) else { return };
-    let (slice, window) = (painting.slice.clone(), painting.window);
-    let scenario = painting.scene.0.scenario;
-    let world = painting.world.clone();
-    let Some(Answer::Painted(Some(picture))) = app.desk.known(&Task::Paint(painting)) else { return };
-    let view =
-        View { model: &world.original.model, scenario, solved, ids: study.names(study.current), slice: &slice, window };
-    let canvas = draw_sketch(&view, picture, page.style);
-    for row in 0..canvas.rows {
-        let line: String = canvas.row(canvas.rows - 1 - row).iter().map(|mark| mark.glyph(page.style)).collect();
-        page.text(area, [0, row as u16], &line, Ink::Plain);
     }
 }

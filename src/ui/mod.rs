@@ -8,6 +8,7 @@ mod dialog;
 mod equilibria;
 mod page;
 mod paint;
+mod sketch;
 mod values;
 
 use ratatui::buffer::Buffer;

@@ -1,10 +1,10 @@
 //! What the user does with the sketch.
 
-use crate::analysis::field::Window;
+use crate::analysis::field::{Frame, Scale, Window, moved, zoomed};
 use crate::app::action::{Action, Axis, Direction};
 use crate::app::wants::{axes, fitting, sketch_size};
 use crate::app::{App, Hold, Study};
-use crate::report::sketch::Plot;
+use crate::report::sketch::{Plot, limit};
 
 /// One step closer shows this share of either axis.
 const CLOSER: f64 = 0.7;
@@ -14,18 +14,16 @@ const SHARE: f64 = 0.1;
 pub(super) fn act(app: &mut App, action: Action) {
     let Some(mut study) = app.study.take() else { return };
     let plot = Plot::of(sketch_size(app, &study));
-    let window = study.sketch.window.unwrap_or_else(|| fitting(&study, axes(&study)));
+    let desk = Desk::new(&study, plot);
     match action {
-        Action::Closer => study.sketch.window = Some(scaled(window, CLOSER, about(&study, window))),
-        Action::Wider => study.sketch.window = Some(scaled(window, 1.0 / CLOSER, about(&study, window))),
+        Action::Closer => desk.zoom(&mut study, CLOSER),
+        Action::Wider => desk.zoom(&mut study, 1.0 / CLOSER),
         Action::Fit => study.sketch.window = None,
-        Action::Centre => study.sketch.window = selected(&study).map(|place| scaled(window, 1.0, place)),
+        Action::Centre => desk.centre(&mut study),
         Action::Drag => toggle(&mut study, Hold::Window),
         Action::Point => {
             toggle(&mut study, Hold::Point);
-            if study.sketch.point.is_none() {
-                study.sketch.point = Some(today(&study).unwrap_or_else(|| middle(window)));
-            }
+            desk.place_point(&mut study);
         }
         Action::NoPoint => {
             study.sketch.point = None;
@@ -34,12 +32,11 @@ pub(super) fn act(app: &mut App, action: Action) {
         }
         Action::Backwards => {
             study.sketch.backwards = !study.sketch.backwards;
-            if study.sketch.point.is_none() {
-                study.sketch.point = Some(today(&study).unwrap_or_else(|| middle(window)));
-            }
+            desk.place_point(&mut study);
         }
         Action::Species(axis) => turn(&mut study, axis),
-        Action::Move(direction) => moved(&mut study, window, plot, direction),
+        Action::Logarithmic(axis) => logarithmic(&mut study, axis),
+        Action::Move(direction) => desk.shift(&mut study, direction),
         _ => {}
     }
     app.study = Some(study);
@@ -49,35 +46,88 @@ fn toggle(study: &mut Study, hold: Hold) {
     study.sketch.hold = if study.sketch.hold == Some(hold) { None } else { Some(hold) };
 }
 
-/// What the window grows or shrinks about: the point, the selected equilibrium if it is in sight, the middle.
-fn about(study: &Study, window: Window) -> [f64; 2] {
-    let in_sight = |place: &[f64; 2]| window.holds(*place);
-    study.sketch.point.or_else(|| selected(study)).filter(in_sight).unwrap_or_else(|| middle(window))
+/// What the sketch shows just now.
+struct Desk {
+    frame: Frame,
+    limit: Window,
 }
 
-fn middle(window: Window) -> [f64; 2] {
-    [window.x, window.y].map(|[low, high]| f64::midpoint(low, high))
+impl Desk {
+    fn new(study: &Study, plot: Plot) -> Self {
+        let axes = axes(study);
+        let window = study.sketch.window.unwrap_or_else(|| fitting(study, axes));
+        let frame = Frame::scaled(window, study.sketch.scales, plot.columns, plot.rows);
+        Self { frame, limit: limit(&study.world.prepared.bounds, axes) }
+    }
+
+    fn middle(&self) -> [f64; 2] {
+        let [columns, rows] = [self.frame.columns, self.frame.rows].map(|count| (count - 1) as f64 / 2.0);
+        [self.frame.x(columns), self.frame.y(rows)]
+    }
+
+    /// About the point, the selected equilibrium where it is in sight, else the middle.
+    fn zoom(&self, study: &mut Study, factor: f64) {
+        let in_sight = |place: &[f64; 2]| self.frame.window.holds(*place);
+        let about = study.sketch.point.or_else(|| selected(study)).filter(in_sight).unwrap_or_else(|| self.middle());
+        study.sketch.window = Some(zoomed(self.frame.window, self.frame.scales, self.limit, factor, about));
+    }
+
+    /// Moves the window so that the selected equilibrium is in the middle, as far as the search box lets it.
+    fn centre(&self, study: &mut Study) {
+        let Some([column, row]) = selected(study).map(|place| self.frame.place(place)) else { return };
+        let [columns, rows] = [self.frame.columns, self.frame.rows].map(|count| (count - 1) as f64);
+        let by = [column / columns - 0.5, row / rows - 0.5];
+        // An absent species is nowhere on a logarithmic axis.
+        if by.iter().all(|by| by.is_finite()) {
+            study.sketch.window = Some(moved(self.frame.window, self.frame.scales, self.limit, by));
+        }
+    }
+
+    fn place_point(&self, study: &mut Study) {
+        if study.sketch.point.is_none() {
+            let today = today(study).filter(|now| !self.frame.is_beyond_logarithms(*now));
+            study.sketch.point = Some(today.unwrap_or_else(|| self.middle()));
+        }
+    }
+
+    /// Moves the point by a cell, or the window by a share of itself.
+    fn shift(&self, study: &mut Study, direction: Direction) {
+        let by = match direction {
+            Direction::Left => [-1.0, 0.0],
+            Direction::Right => [1.0, 0.0],
+            Direction::Up => [0.0, 1.0],
+            Direction::Down => [0.0, -1.0],
+        };
+        match (study.sketch.hold, study.sketch.point) {
+            (Some(Hold::Point), Some(point)) => {
+                let [column, row] = self.frame.place(point);
+                let next = [self.frame.x(column + by[0]), self.frame.y(row + by[1])];
+                // A point beside the window comes back to its side.
+                study.sketch.point = Some(next.map(|x| x.max(0.0)));
+            }
+            (Some(Hold::Window), _) => {
+                let by = by.map(|by| SHARE * by);
+                study.sketch.window = Some(moved(self.frame.window, self.frame.scales, self.limit, by));
+            }
+            _ => {}
+        }
+    }
 }
 
 /// Where the selected equilibrium lies along the axes.
 fn selected(study: &Study) -> Option<[f64; 2]> {
     let state = &study.solved()?.equilibria.list.get(study.chosen)?.state;
-    Some(axes(study).map(|species| state.get(species).copied().unwrap_or(0.0)))
+    Some(along(study, state))
 }
 
 fn today(study: &Study) -> Option<[f64; 2]> {
-    let now = study.model().today()?;
-    Some(axes(study).map(|species| now.get(species).copied().unwrap_or(0.0)))
+    study.model().today().map(|now| along(study, &now))
 }
 
-/// The window so many times as wide, with a place in the middle; within the search box.
-fn scaled(window: Window, factor: f64, [x, y]: [f64; 2]) -> Window {
-    let along = |[low, high]: [f64; 2], middle: f64| {
-        let half = factor * (high - low) / 2.0;
-        let low = (middle - half).max(0.0);
-        [low, low + 2.0 * half]
-    };
-    Window { x: along(window.x, x), y: along(window.y, y) }
+fn along(study: &Study, state: &[f64]) -> [f64; 2] {
+    let [x, y] = axes(study);
+    let of = |species: usize| state.get(species).copied().unwrap_or(0.0);
+    [of(x), if state.len() > 1 { of(y) } else { 0.0 }]
 }
 
 /// Another species along an axis; the other axis gives way.
@@ -99,24 +149,10 @@ fn turn(study: &mut Study, axis: Axis) {
     study.sketch.point = None;
 }
 
-/// Moves the point by a cell, or the window by a share of itself.
-fn moved(study: &mut Study, window: Window, plot: Plot, direction: Direction) {
-    let [right, up] = match direction {
-        Direction::Left => [-1.0, 0.0],
-        Direction::Right => [1.0, 0.0],
-        Direction::Up => [0.0, 1.0],
-        Direction::Down => [0.0, -1.0],
-    };
-    let [width, height] = [window.x, window.y].map(|[low, high]| high - low);
-    match (study.sketch.hold, study.sketch.point) {
-        (Some(Hold::Point), Some([x, y])) => {
-            let step = [width / (plot.columns - 1).max(1) as f64, height / (plot.rows - 1).max(1) as f64];
-            study.sketch.point = Some([(x + right * step[0]).max(0.0), (y + up * step[1]).max(0.0)]);
-        }
-        (Some(Hold::Window), _) => {
-            let [x, y] = middle(window);
-            study.sketch.window = Some(scaled(window, 1.0, [x + SHARE * right * width, y + SHARE * up * height]));
-        }
-        _ => {}
-    }
+fn logarithmic(study: &mut Study, axis: Axis) {
+    let place = usize::from(axis == Axis::Upwards);
+    let scale = &mut study.sketch.scales[place];
+    *scale = if *scale == Scale::Linear { Scale::Logarithmic } else { Scale::Linear };
+    // What a window shows of one scale says little on the other.
+    study.sketch.window = None;
 }

@@ -1,0 +1,75 @@
+//! The sketch of a slot in a part of a screen, with what the user put over it.
+
+use super::paint::Page;
+use crate::analysis::paths::Path;
+use crate::app::geometry::Area;
+use crate::app::task::{Answer, Painting, Task};
+use crate::app::wants::{painting, path};
+use crate::app::{App, Study};
+use crate::report::grid::Ink;
+use crate::report::sketch::{Extras, Size, View, came_from, drawing, ends};
+
+/// What is drawn of a slot, as far as it is known.
+pub(super) struct Shown<'s> {
+    painting: Painting,
+    app: &'s App,
+    study: &'s Study,
+    slot: usize,
+    size: Size,
+}
+
+impl<'s> Shown<'s> {
+    /// Of a slot, for an area; `None` before anything is found.
+    pub(super) fn new(app: &'s App, study: &'s Study, slot: usize, area: Area) -> Option<Self> {
+        let size = Size { columns: area.columns.into(), rows: area.rows.into() };
+        Some(Self { painting: painting(study, slot, size)?, app, study, slot, size })
+    }
+
+    fn view(&self) -> Option<View<'_>> {
+        let Painting { world, scene, slice, window, scales, .. } = &self.painting;
+        Some(View {
+            model: &world.original.model,
+            scenario: scene.0.scenario,
+            solved: scene.solved()?,
+            ids: self.study.names(self.slot),
+            slice,
+            window: *window,
+            scales: *scales,
+        })
+    }
+
+    fn path(&self, backwards: bool) -> Option<&Path> {
+        let task = path(self.study, backwards).filter(|_| self.slot == self.study.current)?;
+        match self.app.desk.known(&task)? {
+            Answer::Followed(path) => path.as_deref(),
+            _ => None,
+        }
+    }
+
+    /// Draws it; says that it is under way where it is.
+    pub(super) fn draw(&self, page: &mut Page<'_>, area: Area) {
+        let Some(Answer::Painted(Some(picture))) = self.app.desk.known(&Task::Paint(self.painting.clone())) else {
+            page.text(area, [8, area.rows / 2], "drawing", Ink::Faint);
+            return;
+        };
+        let Some(view) = self.view() else { return };
+        let is_current = self.slot == self.study.current;
+        let extras = Extras {
+            chosen: is_current.then_some(self.study.chosen),
+            point: self.study.sketch.point,
+            forwards: self.path(false),
+            backwards: self.path(true).filter(|_| self.study.sketch.backwards),
+        };
+        page.grid(area, &drawing(&view, picture, &extras, self.size, page.style));
+    }
+
+    /// Where the paths from the point lead and come from, in words; empty where there is no point.
+    pub(super) fn sentence(&self, page: &Page<'_>) -> String {
+        let Some(view) = self.view() else { return String::new() };
+        let forwards = self.path(false).map(|path| ends(&view, path, page.style));
+        let back = self.path(true).filter(|_| self.study.sketch.backwards);
+        let back = back.map(|path| came_from(&view, &self.painting.window, path, page.style));
+        let said: Vec<String> = forwards.into_iter().chain(back).collect();
+        said.join(" ")
+    }
+}
