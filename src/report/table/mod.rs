@@ -7,7 +7,8 @@
 //! not by words, in every format; every format carries what is needed to make the table again, and the caution.
 //!
 //! `identity` names equilibria, `number` rounds, `words` and `scene` have what all formats say, `paths` says where paths
-//! go, `provenance` what the table is of, `layout` makes lines, `guide` explains the columns, `glossary` those shown.
+//! go, `provenance` what the table is of, `layout` makes lines, `guide` explains the columns, `glossary` those shown, `facts`
+//! has one equilibrium for a screen.
 //!
 //! The JSON has the contract's keys in the contract's order, and some of its own after them:
 //!
@@ -21,6 +22,7 @@
 mod columns;
 mod csv;
 mod data;
+mod facts;
 mod glossary;
 mod guide;
 mod identity;
@@ -39,6 +41,7 @@ mod words;
 pub use columns::{COLUMNS, Column, Shown, Unit, columns};
 pub use csv::csv;
 pub use data::json;
+pub use facts::{Case, Fact};
 pub use guide::guide;
 pub use identity::identify;
 pub use latex::latex;
