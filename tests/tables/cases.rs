@@ -2,6 +2,8 @@
 //! stability and yields, in every scenario, and under `--set` as under a scenario with the same values.
 #![allow(clippy::panic, clippy::unwrap_used, reason = "a test fails by panicking")]
 
+use std::sync::OnceLock;
+
 use crate::cli_support::run_on;
 use crate::common::cases::{Case, Equilibrium, all};
 use serde_json::Value;
@@ -22,6 +24,20 @@ fn table(case: &Case, arguments: &[&str]) -> Value {
     let ran = run_on(&case.text().yaml(), &[&["table", "-", "--format", "json"], arguments].concat());
     assert_eq!(ran.code, Some(0), "{}: {}", case.id, ran.err);
     serde_json::from_str(&ran.out).unwrap()
+}
+
+/// Every case with its whole table; run once for both tests.
+fn printed() -> &'static [(Case, Value)] {
+    static PRINTED: OnceLock<Vec<(Case, Value)>> = OnceLock::new();
+    PRINTED.get_or_init(|| {
+        all()
+            .into_iter()
+            .map(|case| {
+                let table = table(&case, &[]);
+                (case, table)
+            })
+            .collect()
+    })
 }
 
 fn list(value: &Value) -> &[Value] {
@@ -88,16 +104,15 @@ fn check(name: &str, case: &Case, found: &Value, published: &Equilibrium) {
 #[test]
 fn what_is_printed_of_published_models_is_what_was_published() {
     let (mut equilibria, mut yields) = (0, 0);
-    for case in all() {
-        let printed = table(&case, &[]);
+    for (case, printed) in printed() {
         let scenarios = list(&printed["scenarios"]);
         assert_eq!(scenarios.len(), case.lists().count(), "{}", case.id);
         for (scenario, published) in scenarios.iter().zip(case.lists()) {
             let found = list(&scenario["equilibria"]);
             for published in published {
                 let name = format!("{}, {}, {:?}", case.id, scenario["name"], published.x);
-                match matching(&case, found, published) {
-                    Some(found) => check(&name, &case, found, published),
+                match matching(case, found, published) {
+                    Some(found) => check(&name, case, found, published),
                     None => assert!(
                         case.is_degenerate(published) || case.species.len() > ALL_FOUND,
                         "{name} is not in the table"
@@ -123,8 +138,7 @@ fn own(scenario: &Value) -> Vec<Value> {
 #[test]
 fn set_values_do_what_a_scenario_with_them_does() {
     let mut compared = 0;
-    for case in all().iter().filter(|case| !case.scenarios.is_empty()) {
-        let printed = table(case, &[]);
+    for (case, printed) in printed() {
         for (k, scenario) in case.scenarios.iter().enumerate() {
             let set: Vec<String> = scenario.values.iter().map(|(name, value)| format!("{name}={value}")).collect();
             let set = set.iter().flat_map(|set| ["--set", set]).collect::<Vec<_>>();
