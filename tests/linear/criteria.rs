@@ -63,7 +63,7 @@ fn community(s: usize, c: f64, sigma: f64, signs: Signs, source: &mut Source) ->
 /// without it is near that level.
 #[test]
 fn random_communities_turn_unstable_where_published() {
-    for (id, seeds, close) in [("K01_random_community_S250", 2, 0.1), ("K02_random_community_S100", 4, 0.2)] {
+    for (id, seeds, close) in [("K01_random_community_S250", 1, 0.1), ("K02_random_community_S100", 4, 0.2)] {
         let entry = criterion(id);
         let s = entry["S"].as_u64().unwrap() as usize;
         let [c, sigma] = ["C", "sigma"].map(|key| number(&entry[key]));
