@@ -19,6 +19,51 @@ use restpoint::report::table::{Limits, Scene, Selection, Solved, Table};
 /// A stand-in for the hash of a file.
 pub const SHA256: &str = "00112233445566778899aabbccddeeff00112233445566778899aabbccddeeff";
 
+/// The keys of a scenario in JSON, in the contract's order.
+pub const SCENARIO_KEYS: [&str; 6] = ["name", "parameters", "search", "from_now", "equilibria", "overlay"];
+
+/// The keys of an equilibrium in JSON, in the contract's order; then ours.
+pub const EQUILIBRIUM_KEYS: [&str; 33] = [
+    "id",
+    "state",
+    "present",
+    "proven",
+    "radius",
+    "eigenvalues",
+    "type",
+    "type_proven",
+    "stable",
+    "stable_proven",
+    "dimensions",
+    "alternating",
+    "nonlinear",
+    "resilience",
+    "return_time",
+    "period",
+    "damping_ratio",
+    "reactivity",
+    "reactivity_proportional",
+    "peak_amplification",
+    "invasion",
+    "settles",
+    "yield",
+    "value",
+    "net_effects",
+    "elasticities",
+    "covariance",
+    "why",
+    "reactivity_present",
+    "peak_amplification_present",
+    "invariability",
+    "populations",
+    "net_effects_condition",
+];
+
+/// [`EQUILIBRIUM_KEYS`] but for `why`, which only stands where something has no derivative.
+pub fn keys_without_reason() -> Vec<&'static str> {
+    EQUILIBRIUM_KEYS.into_iter().filter(|key| *key != "why").collect()
+}
+
 const TWO_STOCKS: &str = "\
 title: Two stocks, größer | and = with 'odd' names
 note: Invented figures, for demonstration only.
