@@ -3,12 +3,14 @@
 //! [`eigenvalues`] and [`spectrum`] are the ways in, [`symmetric()`], [`largest_symmetric`] and [`largest_singular`] for growth
 //! at once, and [`Discriminant`] for the border between node and spiral. A matrix is divided along its zeros (`blocks`), each
 //! block scaled and balanced by powers of two (`scale`), solved in closed form ([`two()`] and [`three()`], which allocate next to
-//! nothing) or by an iteration (`general`), and put together again (`triangular`, `vectors`; orders two and three in
+//! nothing) or by an iteration (`general`; values alone on `hessenberg` and `francis`), and put together again (`triangular`, `vectors`; orders two and three in
 //! `small`). All numerical: what is *proved* of a spectrum is said by [`verified`](super::verified). The library's own calls
 //! for eigenvalues may run for ever; the lint settings forbid them.
 
 mod blocks;
+mod francis;
 mod general;
+mod hessenberg;
 mod scale;
 mod small;
 mod symmetric;

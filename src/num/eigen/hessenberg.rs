@@ -1,0 +1,211 @@
+//! A matrix brought to Hessenberg form by reflections, in one pass over it for each; the similarity itself is forgotten.
+//!
+//! Meant for [`super::francis`], which finds eigenvalues in that form. Columns are kept in whole vectors of a processor, with
+//! zeros below the last row and one column of zeros after the last, so that loops have no ends to look after.
+#![expect(clippy::inline_always, reason = "the loops must end up inside the variant compiled for a processor feature")]
+
+/// Numbers in a vector.
+const LANES: usize = 8;
+
+/// So many numbers apart, columns would share the same few places of a cache.
+const CACHE_STRIDE: usize = 64;
+
+/// A square matrix, column by column.
+pub(super) struct Columns {
+    /// Order.
+    pub(super) n: usize,
+    /// Vectors in a column, more than n numbers.
+    height: usize,
+    vectors: Vec<[f64; LANES]>,
+}
+
+impl Columns {
+    /// Of entries row by row.
+    pub(super) fn new(entries: &[f64], n: usize) -> Self {
+        let mut height = n / LANES + 1;
+        if (height * LANES).is_multiple_of(CACHE_STRIDE) {
+            height += 1;
+        }
+        let mut vectors = vec![[0.0; LANES]; height * (n + 1)];
+        let flat = vectors.as_flattened_mut();
+        for (i, row) in entries.chunks_exact(n.max(1)).enumerate() {
+            for (j, &entry) in row.iter().enumerate() {
+                flat[j * height * LANES + i] = entry;
+            }
+        }
+        Self { n, height, vectors }
+    }
+
+    /// The j-th column, whole.
+    #[inline(always)]
+    fn column(&mut self, j: usize) -> &mut [[f64; LANES]] {
+        &mut self.vectors[j * self.height..(j + 1) * self.height]
+    }
+
+    #[inline(always)]
+    pub(super) fn at(&self, i: usize, j: usize) -> f64 {
+        self.vectors.as_flattened()[j * self.height * LANES + i]
+    }
+
+    #[inline(always)]
+    pub(super) fn put(&mut self, i: usize, j: usize, entry: f64) {
+        self.vectors.as_flattened_mut()[j * self.height * LANES + i] = entry;
+    }
+
+    /// (I − u uᵀ) A for a u in rows k to k + 2, in columns k to before `end`.
+    #[inline(always)]
+    pub(super) fn reflect_rows(&mut self, k: usize, end: usize, u: &[f64; 3]) {
+        let stride = self.height * LANES;
+        for column in self.vectors.as_flattened_mut()[k * stride..end * stride].chunks_exact_mut(stride) {
+            if let Some(x) = column[k..].first_chunk_mut::<3>() {
+                let along = u[0] * x[0] + u[1] * x[1] + u[2] * x[2];
+                x[0] -= along * u[0];
+                x[1] -= along * u[1];
+                x[2] -= along * u[2];
+            }
+        }
+    }
+
+    /// A (I − u uᵀ) for a u in columns k to k + 2, in rows `from` to before `to`, or some more above and below.
+    #[inline(always)]
+    pub(super) fn reflect_columns(&mut self, k: usize, from: usize, to: usize, u: &[f64; 3]) {
+        let (rows, height) = (from / LANES..to.div_ceil(LANES), self.height);
+        let (first, rest) = self.vectors[k * height..(k + 3) * height].split_at_mut(height);
+        let (second, third) = rest.split_at_mut(height);
+        let columns = first[rows.clone()].iter_mut().zip(&mut second[rows.clone()]).zip(&mut third[rows]);
+        for ((x, y), z) in columns {
+            let mut along = [0.0; LANES];
+            for l in 0..LANES {
+                along[l] = u[0] * x[l] + u[1] * y[l] + u[2] * z[l];
+            }
+            for l in 0..LANES {
+                x[l] -= along[l] * u[0];
+            }
+            for l in 0..LANES {
+                y[l] -= along[l] * u[1];
+            }
+            for l in 0..LANES {
+                z[l] -= along[l] * u[2];
+            }
+        }
+    }
+
+    /// Qᵀ A Q in its place, with nothing below the first subdiagonal (Householder 1958; Golub & Van Loan 2013, §7.4).
+    ///
+    /// A reflection I − u uᵀ, |u|² = 2, makes A − u yᵀ − w uᵀ of A, with y = Aᵀ u and w = A u − (uᵀ A u) u. Columns take it
+    /// when the next one is being prepared, which needs the same pass for its own y and w.
+    #[inline(always)]
+    pub(super) fn reduce(&mut self) {
+        let (n, height) = (self.n, self.height);
+        let mut last = Update::none(height, n);
+        let mut next = Update::none(height, n);
+        for k in 0..n {
+            last.apply(self.column(k), k);
+            if k + 2 < n && next.reflect(self.column(k).as_flattened_mut(), k + 1) {
+                for j in k + 1..n {
+                    last.apply_and_gather(self.column(j), j, &mut next);
+                }
+                next.close();
+            } else {
+                (k + 1..n).for_each(|j| last.apply(self.column(j), j));
+                next.clear();
+            }
+            std::mem::swap(&mut last, &mut next);
+        }
+    }
+}
+
+/// What a reflection takes from a matrix: u yᵀ + w uᵀ.
+struct Update {
+    u: Vec<[f64; LANES]>,
+    w: Vec<[f64; LANES]>,
+    y: Vec<f64>,
+}
+
+impl Update {
+    fn none(height: usize, n: usize) -> Self {
+        Self { u: vec![[0.0; LANES]; height], w: vec![[0.0; LANES]; height], y: vec![0.0; n] }
+    }
+
+    #[inline(always)]
+    fn clear(&mut self) {
+        self.u.fill([0.0; LANES]);
+        self.w.fill([0.0; LANES]);
+        self.y.fill(0.0);
+    }
+
+    /// The reflection that leaves of the rows from `first` on only the first entry; false where the others are 0 as it is.
+    #[inline(always)]
+    fn reflect(&mut self, column: &mut [f64], first: usize) -> bool {
+        self.clear();
+        if column[first + 1..].iter().all(|&x| x == 0.0) {
+            return false;
+        }
+        let u = &mut self.u.as_flattened_mut()[first..];
+        u.copy_from_slice(&column[first..]);
+        column[first] = reflector(u);
+        column[first + 1..].fill(0.0);
+        true
+    }
+
+    #[inline(always)]
+    fn apply(&self, column: &mut [[f64; LANES]], j: usize) {
+        let (along, across) = (self.y[j], self.u.as_flattened()[j]);
+        for ((entry, u), w) in column.iter_mut().zip(&self.u).zip(&self.w) {
+            for l in 0..LANES {
+                entry[l] -= u[l] * along + w[l] * across;
+            }
+        }
+    }
+
+    /// The same, and what column j contributes to the A u and Aᵀ u of the next.
+    #[inline(always)]
+    fn apply_and_gather(&self, column: &mut [[f64; LANES]], j: usize, next: &mut Self) {
+        let (along, across, weight) = (self.y[j], self.u.as_flattened()[j], next.u.as_flattened()[j]);
+        let mut sum = [0.0; LANES];
+        let own = column.iter_mut().zip(&self.u).zip(&self.w);
+        for (((entry, u), w), (to, from)) in own.zip(next.w.iter_mut().zip(&next.u)) {
+            // In copies, so that the compiler sees that they do not overlap.
+            let (mut at, mut gathered) = (*entry, *to);
+            for l in 0..LANES {
+                at[l] -= u[l] * along + w[l] * across;
+            }
+            for l in 0..LANES {
+                gathered[l] += at[l] * weight;
+            }
+            for l in 0..LANES {
+                sum[l] += at[l] * from[l];
+            }
+            (*entry, *to) = (at, gathered);
+        }
+        next.y[j] = sum.iter().sum();
+    }
+
+    /// Makes w of A u.
+    #[inline(always)]
+    fn close(&mut self) {
+        let both: f64 = self.u.as_flattened().iter().zip(&self.y).map(|(u, y)| u * y).sum();
+        for (w, u) in self.w.as_flattened_mut().iter_mut().zip(self.u.as_flattened()) {
+            *w -= both * u;
+        }
+    }
+}
+
+/// Makes of a vector the u of the reflection I − u uᵀ, |u|² = 2, that brings it to its first axis; where on that axis. u = 0
+/// for a vector of zeros.
+#[inline(always)]
+pub(super) fn reflector(u: &mut [f64]) -> f64 {
+    let largest = u.iter().fold(0.0f64, |largest, x| largest.max(x.abs()));
+    if largest == 0.0 || !largest.is_finite() {
+        u.fill(0.0);
+        return largest;
+    }
+    u.iter_mut().for_each(|x| *x /= largest);
+    let length = u.iter().map(|x| x * x).sum::<f64>().sqrt();
+    let first = u[0];
+    // The sign that does not cancel; then |x ± |x| e|² = 2 |x| (|x| + |x₁|).
+    u[0] += length.copysign(first);
+    let scale = (length * (length + first.abs())).sqrt();
+    u.iter_mut().for_each(|x| *x /= scale);
+    -length.copysign(first) * largest
+}
