@@ -19,7 +19,7 @@ use nalgebra::Complex;
 
 use super::equilibria::{Derivative, Equilibrium};
 use super::subject::Subject;
-use crate::num::eigen::{Spectrum, Unsolved, spectrum};
+use crate::num::eigen::{Spectrum, Unsolved, eigenvalues, spectrum};
 use crate::num::interval::Interval;
 use classify::Linear;
 use jacobian::Rows;
@@ -116,7 +116,8 @@ pub struct Linearisation {
     pub jacobian: Vec<f64>,
     /// Holds the Jacobian at the equilibrium itself; row by row. Empty for communities too large to prove anything of.
     pub enclosure: Vec<Interval>,
-    /// Eigenvalues in the contract's order, and their vectors.
+    /// Eigenvalues in the contract's order, and their vectors; without these for large communities to which all deviations
+    /// return, unless at most two species are present.
     pub spectrum: Spectrum,
     /// The type.
     pub kind: Kind,
@@ -142,6 +143,10 @@ pub enum Unavailable {
     /// The eigenvalues could not be computed.
     Eigenvalues(Unsolved),
 }
+
+/// Up to this order elasticities of the leading eigenvalue are found, which need its vectors; and all bounds of entries are
+/// of smaller ones.
+const ALWAYS_WITH_VECTORS: usize = 100;
 
 /// One scenario's equations, compiled once for all of its equilibria.
 #[derive(Clone, Debug)]
@@ -178,7 +183,7 @@ impl Lineariser {
             self.rows.numbers(&equilibrium.state)
         };
         let n = equilibrium.state.len();
-        let spectrum = self.ordered(spectrum(&jacobian, n).map_err(Unavailable::Eigenvalues)?);
+        let spectrum = self.spectrum(&jacobian, equilibrium).map_err(Unavailable::Eigenvalues)?;
         let exact = if equilibrium.proven { &enclosure[..] } else { &[] };
         let written = if exact.is_empty() { None } else { self.rows.as_written(equilibrium) };
         let proof = written
@@ -219,12 +224,23 @@ impl Lineariser {
         })
     }
 
-    /// The contract's order: that of the spectrum, for maps by falling modulus.
-    fn ordered(&self, spectrum: Spectrum) -> Spectrum {
-        match self.border {
+    /// In the contract's order: that of the spectrum, for maps by falling modulus.
+    ///
+    /// Vectors cost more than values, and in a large community only three things ask for them: how much an eigenvalue near
+    /// the border is off, where paths go beside an unstable state, and straight paths in the plane of a sketch.
+    fn spectrum(&self, jacobian: &[f64], equilibrium: &Equilibrium) -> Result<Spectrum, Unsolved> {
+        let n = equilibrium.state.len();
+        let crowded = || (0..n).filter(|&i| equilibrium.has(i)).nth(2).is_some();
+        let mut found = None;
+        if n > ALWAYS_WITH_VECTORS && crowded() {
+            let values = eigenvalues(jacobian, n)?;
+            found = critical::is_clear(jacobian, &values, self.border).then_some(Spectrum { values, vectors: None });
+        }
+        let spectrum = found.map_or_else(|| spectrum(jacobian, n), Ok)?;
+        Ok(match self.border {
             Border::Axis => spectrum,
             Border::Circle => spectrum.by_modulus(),
-        }
+        })
     }
 }
 
