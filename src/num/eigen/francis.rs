@@ -5,7 +5,7 @@
 //! of Martin, Peters & Wilkinson (1970).
 #![expect(clippy::inline_always, reason = "the loops must end up inside the variant compiled for a processor feature")]
 
-use super::hessenberg::{Columns, reflector};
+use super::hessenberg::{Columns, Reflection};
 
 /// Sweeps allowed for each eigenvalue; one or two are usual.
 const SWEEPS_AN_EIGENVALUE: usize = 30;
@@ -138,13 +138,12 @@ impl<'m> Block<'m> {
         Shifts { re: self.at(last, last) + 0.75 * size, im: 0.4375 * size * size }
     }
 
-    /// First column of (H − σ₁)(H − σ₂) of the block from k on, up to a factor.
+    /// First column of (H − σ₁)(H − σ₂) of the block from k on.
     #[inline(always)]
     fn first_column(&self, k: usize, shifts: &Shifts) -> [f64; 3] {
         let [a, b, c, d] = [self.at(k, k), self.at(k, k + 1), self.at(k + 1, k), self.at(k + 1, k + 1)];
         let from = a - shifts.re;
-        // All divided by c, which is not 0.
-        [(from * from + shifts.im) / c + b, from + (d - shifts.re), self.at(k + 2, k + 1)]
+        [from * from + shifts.im + b * c, c * (from + (d - shifts.re)), c * self.at(k + 2, k + 1)]
     }
 
     /// The last place where a sweep may begin: two small entries of the subdiagonal in a row do for one that vanished.
@@ -164,26 +163,25 @@ impl<'m> Block<'m> {
     /// Makes a bulge of two shifts at the top and chases it out at the bottom.
     #[inline(always)]
     fn sweep(&mut self, shifts: &Shifts) {
-        let (begin, mut u) = self.place_to_begin(shifts);
+        let (begin, mut x) = self.place_to_begin(shifts);
         for k in begin..self.end - 1 {
             // The last one has two rows; a third entry of 0 leaves the row and column after them as they are.
             let third = k + 2 < self.end;
             if k > begin {
-                u = [self.at(k, k - 1), self.at(k + 1, k - 1), if third { self.at(k + 2, k - 1) } else { 0.0 }];
-                let first = reflector(&mut u);
+                x = [self.at(k, k - 1), self.at(k + 1, k - 1), if third { self.at(k + 2, k - 1) } else { 0.0 }];
+            }
+            let (reflection, first) = Reflection::new(x);
+            if k > begin {
                 self.put(k, k - 1, first);
                 self.put(k + 1, k - 1, 0.0);
                 if third {
                     self.put(k + 2, k - 1, 0.0);
                 }
-            } else {
-                reflector(&mut u);
-                if k > self.start {
-                    self.put(k, k - 1, self.at(k, k - 1) * (1.0 - u[0] * u[0]));
-                }
+            } else if k > self.start {
+                self.put(k, k - 1, self.at(k, k - 1) * reflection.kept());
             }
-            self.matrix.reflect_rows(k, self.end, &u);
-            self.matrix.reflect_columns(k, self.start, self.end.min(k + 4), &u);
+            self.matrix.reflect_rows(k, self.end, &reflection);
+            self.matrix.reflect_columns(k, self.start, self.end.min(k + 4), &reflection);
         }
     }
 }

@@ -52,23 +52,23 @@ impl Columns {
         self.vectors.as_flattened_mut()[j * self.height * LANES + i] = entry;
     }
 
-    /// (I − u uᵀ) A for a u in rows k to k + 2, in columns k to before `end`.
+    /// (I − b v vᵀ) A for a v in rows k to k + 2, in columns k to before `end`.
     #[inline(always)]
-    pub(super) fn reflect_rows(&mut self, k: usize, end: usize, u: &[f64; 3]) {
+    pub(super) fn reflect_rows(&mut self, k: usize, end: usize, Reflection { v, bv }: &Reflection) {
         let stride = self.height * LANES;
         for column in self.vectors.as_flattened_mut()[k * stride..end * stride].chunks_exact_mut(stride) {
             if let Some(x) = column[k..].first_chunk_mut::<3>() {
-                let along = u[0] * x[0] + u[1] * x[1] + u[2] * x[2];
-                x[0] -= along * u[0];
-                x[1] -= along * u[1];
-                x[2] -= along * u[2];
+                let along = v[0] * x[0] + v[1] * x[1] + v[2] * x[2];
+                x[0] -= along * bv[0];
+                x[1] -= along * bv[1];
+                x[2] -= along * bv[2];
             }
         }
     }
 
-    /// A (I − u uᵀ) for a u in columns k to k + 2, in rows `from` to before `to`, or some more above and below.
+    /// A (I − b v vᵀ) for a v in columns k to k + 2, in rows `from` to before `to`, or some more above and below.
     #[inline(always)]
-    pub(super) fn reflect_columns(&mut self, k: usize, from: usize, to: usize, u: &[f64; 3]) {
+    pub(super) fn reflect_columns(&mut self, k: usize, from: usize, to: usize, Reflection { v, bv }: &Reflection) {
         let (rows, height) = (from / LANES..to.div_ceil(LANES), self.height);
         let (first, rest) = self.vectors[k * height..(k + 3) * height].split_at_mut(height);
         let (second, third) = rest.split_at_mut(height);
@@ -76,16 +76,16 @@ impl Columns {
         for ((x, y), z) in columns {
             let mut along = [0.0; LANES];
             for l in 0..LANES {
-                along[l] = u[0] * x[l] + u[1] * y[l] + u[2] * z[l];
+                along[l] = v[0] * x[l] + v[1] * y[l] + v[2] * z[l];
             }
             for l in 0..LANES {
-                x[l] -= along[l] * u[0];
+                x[l] -= along[l] * bv[0];
             }
             for l in 0..LANES {
-                y[l] -= along[l] * u[1];
+                y[l] -= along[l] * bv[1];
             }
             for l in 0..LANES {
-                z[l] -= along[l] * u[2];
+                z[l] -= along[l] * bv[2];
             }
         }
     }
@@ -194,11 +194,10 @@ impl Update {
 /// Makes of a vector the u of the reflection I − u uᵀ, |u|² = 2, that brings it to its first axis; where on that axis. u = 0
 /// for a vector of zeros.
 #[inline(always)]
-pub(super) fn reflector(u: &mut [f64]) -> f64 {
+fn reflector(u: &mut [f64]) -> f64 {
     let largest = u.iter().fold(0.0f64, |largest, x| largest.max(x.abs()));
-    if largest == 0.0 || !largest.is_finite() {
-        u.fill(0.0);
-        return largest;
+    if largest == 0.0 {
+        return 0.0;
     }
     u.iter_mut().for_each(|x| *x /= largest);
     let length = u.iter().map(|x| x * x).sum::<f64>().sqrt();
@@ -208,4 +207,47 @@ pub(super) fn reflector(u: &mut [f64]) -> f64 {
     let scale = (length * (length + first.abs())).sqrt();
     u.iter_mut().for_each(|x| *x /= scale);
     -length.copysign(first) * largest
+}
+
+/// I − b v vᵀ in three dimensions.
+pub(super) struct Reflection {
+    v: [f64; 3],
+    /// b v.
+    bv: [f64; 3],
+}
+
+/// Squares of lengths that are neither too small nor too large to be told from their sum.
+const SAFE: std::ops::Range<f64> = 1e-250..1e250;
+
+impl Reflection {
+    /// Brings x to its first axis; and where on that axis. The identity for a vector of zeros.
+    #[inline(always)]
+    pub(super) fn new(x: [f64; 3]) -> (Self, f64) {
+        let square = x[0] * x[0] + x[1] * x[1] + x[2] * x[2];
+        if SAFE.contains(&square) {
+            return Self::of_length(x, square.sqrt());
+        }
+        let largest = x[0].abs().max(x[1].abs()).max(x[2].abs());
+        if largest == 0.0 {
+            return (Self { v: [0.0; 3], bv: [0.0; 3] }, 0.0);
+        }
+        let x = x.map(|x| x / largest);
+        let (found, first) = Self::of_length(x, (x[0] * x[0] + x[1] * x[1] + x[2] * x[2]).sqrt());
+        (found, first * largest)
+    }
+
+    #[inline(always)]
+    fn of_length(x: [f64; 3], length: f64) -> (Self, f64) {
+        // The sign that does not cancel; then b = 2/|v|² = 1/(|x| |v₁|).
+        let first = x[0] + length.copysign(x[0]);
+        let v = [first, x[1], x[2]];
+        let b = 1.0 / (length * first.abs());
+        (Self { v, bv: v.map(|v| b * v) }, -length.copysign(x[0]))
+    }
+
+    /// What is left of the first entry of a vector along the first axis.
+    #[inline(always)]
+    pub(super) fn kept(&self) -> f64 {
+        1.0 - self.v[0] * self.bv[0]
+    }
 }
