@@ -42,25 +42,17 @@ pub(super) fn errors(numbers: &[f64], enclosure: &[Interval], spectrum: &Spectru
     (0..n).map(error).collect()
 }
 
-/// Whether every eigenvalue attracts by more than any could be off, so that no condition and no vector can change a side.
-///
-/// Of entries without bounds, about which rounding is all that is known.
-pub(super) fn is_clear(numbers: &[f64], values: &[Complex<f64>], border: Border) -> bool {
-    let most = Rounding::new(numbers, &balanced(numbers, values.len())).most(0.0);
-    values.iter().all(|&value| excess(value, border) < -most)
-}
-
 /// What rounding does to a balanced matrix.
-struct Rounding {
+pub(super) struct Rounding {
     n: usize,
     /// The largest entry.
-    largest: f64,
+    pub(super) largest: f64,
     /// Of it, what all entries together may be off.
-    share: f64,
+    pub(super) share: f64,
 }
 
 impl Rounding {
-    fn new(numbers: &[f64], scale: &[f64]) -> Self {
+    pub(super) fn new(numbers: &[f64], scale: &[f64]) -> Self {
         let n = scale.len();
         let size = |k: usize| numbers[k].abs() * scale[k % n] / scale[k / n];
         Self { n, largest: (0..n * n).map(size).fold(0.0, f64::max), share: BACKWARD * n as f64 * f64::EPSILON }
@@ -68,7 +60,7 @@ impl Rounding {
 
     /// What no eigenvalue is taken to be off by more than: the square root that a double one has, for entries that are
     /// `uncertain` besides.
-    fn most(&self, uncertain: f64) -> f64 {
+    pub(super) fn most(&self, uncertain: f64) -> f64 {
         // The roots apart, for their product may overflow.
         (self.n as f64 * (self.share * self.largest + uncertain)).sqrt() * self.largest.sqrt()
     }
@@ -81,7 +73,7 @@ fn modulus(z: Complex<f64>) -> f64 {
 }
 
 /// Sizes of the species by which rows and columns come to like norms (Parlett & Reinsch 1969), powers of two.
-fn balanced(numbers: &[f64], n: usize) -> Vec<f64> {
+pub(super) fn balanced(numbers: &[f64], n: usize) -> Vec<f64> {
     let mut scale = vec![1.0f64; n];
     for _ in 0..BALANCINGS {
         for i in 0..n {

@@ -3,10 +3,12 @@
 //!
 //! The words here are the contract's. [`Kind`] and [`Linearisation::stable`] speak of the linear part alone;
 //! [`Nonlinear`] answers where an eigenvalue is critical: real part 0, for a map modulus 1. Start at [`Lineariser`].
-//! `jacobian` evaluates, `written` does so for the numbers as the file has them, `proof` (on `planar` and `place`) says what holds for every Jacobian between the bounds, `critical`
-//! how much a computed eigenvalue may be off, `classify` makes words of both, `nonlinear` looks at the higher terms.
+//! `jacobian` evaluates, `written` does so for the numbers as the file has them, `proof` (on `planar` and `place`) says what holds for every Jacobian between the bounds, `critical` how
+//! much a computed eigenvalue may be off (`clear` where large communities need few vectors for it), `classify` makes words of
+//! both, `nonlinear` looks at the higher terms.
 
 mod classify;
+mod clear;
 mod critical;
 mod jacobian;
 mod nonlinear;
@@ -183,7 +185,7 @@ impl Lineariser {
             self.rows.numbers(&equilibrium.state)
         };
         let n = equilibrium.state.len();
-        let spectrum = self.spectrum(&jacobian, equilibrium).map_err(Unavailable::Eigenvalues)?;
+        let (spectrum, errors) = self.spectrum(&jacobian, equilibrium).map_err(Unavailable::Eigenvalues)?;
         let exact = if equilibrium.proven { &enclosure[..] } else { &[] };
         let written = if exact.is_empty() { None } else { self.rows.as_written(equilibrium) };
         let proof = written
@@ -194,6 +196,7 @@ impl Lineariser {
             enclosure: written.as_ref().map_or(exact, |written| &written.jacobian),
             exact,
             spectrum: &spectrum,
+            errors,
             proof: &proof,
             border: self.border,
         };
@@ -224,23 +227,28 @@ impl Lineariser {
         })
     }
 
-    /// In the contract's order: that of the spectrum, for maps by falling modulus.
+    /// In the contract's order, and what each eigenvalue may be off by where vectors were left out.
     ///
     /// Vectors cost more than values, and in a large community only three things ask for them: how much an eigenvalue near
     /// the border is off, where paths go beside an unstable state, and straight paths in the plane of a sketch.
-    fn spectrum(&self, jacobian: &[f64], equilibrium: &Equilibrium) -> Result<Spectrum, Unsolved> {
+    fn spectrum(&self, jacobian: &[f64], equilibrium: &Equilibrium) -> Result<(Spectrum, Option<Vec<f64>>), Unsolved> {
         let n = equilibrium.state.len();
         let crowded = || (0..n).filter(|&i| equilibrium.has(i)).nth(2).is_some();
-        let mut found = None;
         if n > ALWAYS_WITH_VECTORS && crowded() {
-            let values = eigenvalues(jacobian, n)?;
-            found = critical::is_clear(jacobian, &values, self.border).then_some(Spectrum { values, vectors: None });
+            let alone = self.ordered(Spectrum { values: eigenvalues(jacobian, n)?, vectors: None });
+            if let Some(errors) = clear::errors(jacobian, &alone.values, self.border) {
+                return Ok((alone, Some(errors)));
+            }
         }
-        let spectrum = found.map_or_else(|| spectrum(jacobian, n), Ok)?;
-        Ok(match self.border {
+        Ok((self.ordered(spectrum(jacobian, n)?), None))
+    }
+
+    /// The contract's order: that of the spectrum, for maps by falling modulus.
+    fn ordered(&self, spectrum: Spectrum) -> Spectrum {
+        match self.border {
             Border::Axis => spectrum,
             Border::Circle => spectrum.by_modulus(),
-        })
+        }
     }
 }
 
