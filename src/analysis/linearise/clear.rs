@@ -71,7 +71,9 @@ fn vector(matrix: &[f64], inverse: &[f64], allowed: f64) -> Option<Vec<f64>> {
         if !(largest > 0.0 && largest.is_finite()) {
             return None;
         }
-        x.iter_mut().for_each(|x| *x /= largest);
+        for x in &mut x {
+            *x /= largest;
+        }
     }
     let left = times(matrix, &x).iter().fold(0.0f64, |largest, x| largest.max(x.abs()));
     (left <= allowed * sum(&x)).then_some(x)

@@ -199,13 +199,17 @@ fn reflector(u: &mut [f64]) -> f64 {
     if largest == 0.0 {
         return 0.0;
     }
-    u.iter_mut().for_each(|x| *x /= largest);
+    for x in u.iter_mut() {
+        *x /= largest;
+    }
     let length = u.iter().map(|x| x * x).sum::<f64>().sqrt();
     let first = u[0];
     // The sign that does not cancel; then |x ± |x| e|² = 2 |x| (|x| + |x₁|).
     u[0] += length.copysign(first);
     let scale = (length * (length + first.abs())).sqrt();
-    u.iter_mut().for_each(|x| *x /= scale);
+    for x in u.iter_mut() {
+        *x /= scale;
+    }
     -length.copysign(first) * largest
 }
 
