@@ -91,11 +91,15 @@ pub struct Equilibria {
 /// Columns of the list at least and at most; a sketch needs the rest more.
 const LIST: [u16; 2] = [29, 66];
 
+/// Columns of the list beside which a sketch has room enough.
+const AMPLE: u16 = 46;
+
 /// The parts of the screen of equilibria, with so many equilibria to be listed.
 pub fn equilibria(size: Size, count: usize) -> Equilibria {
     let body = frame(size).body;
     let (sentence, rest) = body.top(if size.columns < 120 { 3 } else { 2 });
-    let (left, right) = rest.left((size.columns * 2 / 5).clamp(LIST[0], LIST[1]));
+    let (left, right) =
+        rest.left((size.columns * 2 / 5).clamp(LIST[0], if size.columns < 160 { AMPLE } else { LIST[1] }));
     // A heading above the list, a line where there is more; the numbers get at least half.
     let wanted = u16::try_from(count).unwrap_or(u16::MAX).saturating_add(2);
     let (list, numbers) = left.top(wanted.min(left.rows / 2));

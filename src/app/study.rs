@@ -97,6 +97,8 @@ pub struct Study {
     pub chosen: usize,
     /// The first equilibrium of the list that is shown.
     pub from: usize,
+    /// The first number of the selected equilibrium that is shown.
+    pub facts_from: usize,
     /// What the sketch shows.
     pub sketch: Sketch,
     /// Values that were tried.
@@ -119,6 +121,7 @@ impl Study {
             current: 0,
             chosen: 0,
             from: 0,
+            facts_from: 0,
             sketch: Sketch::default(),
             tried: Tried::default(),
             parameter: 0,

@@ -10,7 +10,8 @@ use crate::app::{App, Study};
 use crate::model::Model;
 use crate::report::grid::Ink;
 use crate::report::kinds;
-use crate::report::table::{Case, Fact, Scene, Solved, human};
+use crate::report::sketch::Style;
+use crate::report::table::{Case, Scene, Solved, human};
 
 /// The whole screen.
 pub(super) fn draw(app: &App, study: &Study, page: &mut Page<'_>) {
@@ -179,23 +180,30 @@ fn ending_at(page: &mut Page<'_>, area: Area, [end, row]: [u16; 2], text: &str, 
     page.text(Area { columns: end.min(area.columns), ..area }, [end.saturating_sub(width), row], text, ink);
 }
 
-/// Columns for what a number is.
-const LABEL: u16 = 15;
-
-/// The numbers of the selected equilibrium.
+/// The numbers of the selected equilibrium: each on a line, or on two where it is too long.
 fn numbers(study: &Study, case: &Case<'_>, page: &mut Page<'_>, area: Area) {
-    let ascii = page.style == crate::report::sketch::Style::Ascii;
+    let ascii = page.style == Style::Ascii;
     let facts = case.facts(study.chosen, ascii);
-    let label = LABEL.max(area.columns / 3);
-    let room = usize::from(area.rows);
-    for (row, Fact { label: what, value, ink }) in facts.iter().take(room).enumerate() {
-        let is_cut = row + 1 == room && facts.len() > room;
-        if is_cut {
-            let text = format!("{} {} more", more(page.style), facts.len() - row);
-            page.text(area, [0, row as u16], &text, Ink::Faint);
-            break;
+    let from = study.facts_from.min(facts.len().saturating_sub(1));
+    let mut row = 0;
+    for (place, fact) in facts.iter().enumerate().skip(from) {
+        let is_long = fact.label.width() + 2 + fact.value.width() > usize::from(area.columns);
+        let rows = if is_long { 2 } else { 1 };
+        let is_last = place + 1 == facts.len();
+        if row + rows + u16::from(!is_last) > area.rows {
+            let text = format!("{} {} more below", more(page.style), facts.len() - place);
+            page.text(area, [0, row], &text, Ink::Faint);
+            return;
         }
-        page.text(Area { columns: label - 1, ..area }, [0, row as u16], what, Ink::Faint);
-        page.text(area, [label, row as u16], value, *ink);
+        page.text(area, [0, row], &fact.label, Ink::Faint);
+        let width = (fact.value.width() as u16).min(area.columns);
+        let column =
+            if is_long { area.columns - width } else { (area.columns - width).min(LABEL.max(area.columns / 3)) };
+        let column = column.max(if is_long { 0 } else { fact.label.width() as u16 + 2 }).min(area.columns);
+        page.text(area, [column, row + rows - 1], &fact.value, fact.ink);
+        row += rows;
     }
 }
+
+/// Where values begin, at least.
+const LABEL: u16 = 15;

@@ -5,6 +5,9 @@ use crate::app::action::{Action, Step};
 use crate::app::geometry::{equilibria, listed};
 use crate::app::{App, Dialog, Effect, Purpose, Screen};
 
+/// More numbers than an equilibrium has lines of; the screen shows the last where that is passed.
+const MOST_NUMBERS: usize = 200;
+
 /// Does it.
 pub(super) fn act(app: &mut App, action: Action) -> Vec<Effect> {
     match action {
@@ -16,6 +19,11 @@ pub(super) fn act(app: &mut App, action: Action) -> Vec<Effect> {
         Action::Show(screen) => show(app, screen),
         Action::Step(step) => walk(app, step),
         Action::Scenario(step) => scenario(app, step),
+        Action::Numbers(step) => {
+            if let Some(study) = &mut app.study {
+                study.facts_from = stepped(study.facts_from, MOST_NUMBERS, 1, step);
+            }
+        }
         Action::Accept => return entry::accept(app),
         Action::Type => entry::begin(app),
         Action::Write => entry::open(app, Purpose::Write),
@@ -99,6 +107,7 @@ fn walk(app: &mut App, step: Step) {
             let count = study.count();
             let page = listed(equilibria(app.size, count).list);
             study.chosen = stepped(study.chosen, count, page, step);
+            study.facts_from = 0;
         }
         _ => {}
     }
