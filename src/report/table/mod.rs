@@ -38,6 +38,7 @@ mod words;
 
 pub use columns::{COLUMNS, Column, Shown, Unit, columns};
 pub use csv::csv;
+pub(super) use csv::line;
 pub use data::json;
 pub use guide::guide;
 pub use identity::identify;
