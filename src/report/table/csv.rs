@@ -111,7 +111,8 @@ fn joined(texts: &[String]) -> Value {
     if texts.is_empty() { Value::Null } else { texts.join("; ").into() }
 }
 
-fn line(values: &[Value], style: Style) -> String {
+/// A line of fields, ending in CR LF.
+pub(in crate::report) fn line(values: &[Value], style: Style) -> String {
     values.iter().map(|value| field(value, style)).collect::<Vec<_>>().join(",") + "\r\n"
 }
 

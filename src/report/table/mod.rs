@@ -40,6 +40,7 @@ mod words;
 
 pub use columns::{COLUMNS, Column, Shown, Unit, columns};
 pub use csv::csv;
+pub(super) use csv::line;
 pub use data::json;
 pub use facts::{Case, Fact};
 pub use guide::guide;
