@@ -4,7 +4,6 @@
 //! One that is fed in either (restocking, immigration, a constant take) moves, though it may begin at 0. A row that can be
 //! divided by its own species in both is divided, so that the branch goes through 0 instead of meeting another there.
 
-use crate::analysis::equilibria::Equilibrium;
 use crate::expr::graph::divide::AtZero;
 use crate::expr::graph::{Graph, NodeId, Operation};
 use crate::expr::tape::Tape;

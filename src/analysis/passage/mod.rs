@@ -7,11 +7,13 @@
 //! statement about time either: the way is between two plans, not from one year to the next.
 //!
 //! [`Ways`] is the way in. `face` has the equations of those present, `curve` points of the curve, `walk` goes along it,
-//! `locate` finds where something happened, `agree` keeps of what was found only what is the same from both ends.
+//! `locate` finds where something happened, `agree` keeps of what was found only what is the same from both ends,
+//! [`identify`] numbers the equilibria of several scenarios by it.
 
 mod agree;
 mod curve;
 mod face;
+mod identity;
 mod locate;
 mod walk;
 
@@ -23,6 +25,7 @@ use crate::expr::graph::{Graph, NodeId};
 use crate::model::{Model, SpeciesId};
 use curve::Curve;
 use face::{Face, Rows};
+pub use identity::{Identities, identify};
 use walk::{Course, End, Ground, Obstacle, Walk};
 
 /// What becomes of an equilibrium on the way to another scenario. Shares of the way are counted from the first scenario of
@@ -42,7 +45,7 @@ pub enum Fate {
     Fold {
         /// Share of the way.
         at: f64,
-        /// Which of its own scenario it meets, where that is known.
+        /// Which of its own scenario it meets; `None` where that arose on the way, or is not known.
         with: Option<usize>,
     },
     /// The abundance of one who is present reaches 0; beyond, it would be negative.
@@ -116,7 +119,7 @@ pub struct Ways {
 
 /// A scenario of the model, and its equilibria.
 #[derive(Clone, Copy, Debug)]
-pub struct Stop<'e> {
+pub struct Found<'e> {
     /// Its index.
     pub scenario: usize,
     /// What was found in it.
@@ -137,7 +140,7 @@ impl Ways {
     }
 
     /// Follows every equilibrium of either scenario to the other. Once `stop` says so the rest is not followed.
-    pub fn passage(&mut self, ends: [Stop<'_>; 2], stop: &dyn Fn() -> bool) -> Passage {
+    pub fn passage(&mut self, ends: [Found<'_>; 2], stop: &dyn Fn() -> bool) -> Passage {
         self.passage_of(ends, &|_, _| true, stop)
     }
 
@@ -145,12 +148,12 @@ impl Ways {
     /// its list; the others count as stopped, and no pair with them is made.
     pub fn passage_of(
         &mut self,
-        ends: [Stop<'_>; 2],
+        ends: [Found<'_>; 2],
         wanted: &dyn Fn(usize, usize) -> bool,
         stop: &dyn Fn() -> bool,
     ) -> Passage {
         let [first, second] = ends.map(|end| self.scenarios.get(end.scenario).cloned().flatten());
-        let unfollowed = |end: Stop<'_>| vec![Fate::NotFollowed(Reason::Stopped); end.list.len()];
+        let unfollowed = |end: Found<'_>| vec![Fate::NotFollowed(Reason::Stopped); end.list.len()];
         let (Some(first), Some(second)) = (first, second) else {
             return Passage { forward: unfollowed(ends[0]), backward: unfollowed(ends[1]) };
         };
@@ -174,7 +177,7 @@ struct Way<'w> {
     rows: Rows,
     values: [&'w [f64]; 2],
     sides: &'w [[f64; 2]],
-    ends: [Stop<'w>; 2],
+    ends: [Found<'w>; 2],
     /// By who moves.
     faces: HashMap<Vec<bool>, Option<Face>>,
     stop: &'w dyn Fn() -> bool,
@@ -241,13 +244,13 @@ impl Way<'_> {
             Some((coordinate, at)) => Fate::LeavesBox { at, species: SpeciesId(face.moving[coordinate]) },
             None => Fate::NotFollowed(otherwise),
         };
-        let fold = turns.first().copied();
-        match (course.end, fold) {
+        match (course.end, turns.first().copied()) {
             (End::Side { x, s }, _) if s != home => match self.listed(1 - end, face, &x) {
                 Some(at) => Fate::Arrives { at, turns, kinks },
                 None => left(Reason::Unlisted),
             },
-            (End::Side { x, .. }, Some(at)) => Fate::Fold { at, with: self.listed(end, face, &x) },
+            // After more turns the one at the other end is not the one that is met at the first.
+            (End::Side { x, .. }, Some(at)) if turns.len() == 1 => Fate::Fold { at, with: self.listed(end, face, &x) },
             (End::Stopped, _) => Fate::NotFollowed(Reason::Stopped),
             (_, Some(at)) => Fate::Fold { at, with: None },
             (End::Zero { coordinate, x, s }, None) => {
