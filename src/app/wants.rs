@@ -22,6 +22,7 @@ pub fn wants(app: &App) -> Vec<Task> {
     let Some(study) = &app.study else { return tasks };
     tasks.extend(preparing(study));
     tasks.extend(searches(app, study));
+    tasks.extend(naming(app, study));
     if matches!(app.screen, Screen::Equilibria | Screen::Values) {
         tasks.extend(painting(study, study.current, sketch_size(app, study)).map(Task::Paint));
         tasks.extend(paths(study));
@@ -42,6 +43,15 @@ fn searches<'s>(app: &'s App, study: &'s Study) -> impl Iterator<Item = Task> + 
     let count = study.slots.len();
     let order = (0..count).map(move |k| (study.current + k) % count);
     order.filter_map(|k| study.slots.get(k)).filter(|slot| !slot.is_fresh()).map(|slot| search(slot, app.budget))
+}
+
+/// Names for all that is found.
+pub(super) fn naming(app: &App, study: &Study) -> Option<Task> {
+    let found = |slot: &Slot| slot.found.as_ref().map(|(_, scene)| Found(Arc::clone(scene)));
+    let scenes: Vec<Found> = study.nameable().iter().filter_map(|&k| found(&study.slots[k])).collect();
+    // The world of the tried values has the scenarios of the file as well.
+    let world = study.slots.last().filter(|slot| slot.is_fresh()).map_or(&study.world, |slot| &slot.world);
+    (!scenes.is_empty()).then(|| Task::Name { world: Arc::clone(world), scenes, budget: app.budget })
 }
 
 fn search(slot: &Slot, budget: f64) -> Task {

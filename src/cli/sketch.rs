@@ -7,7 +7,7 @@ use crate::diag::Diagnostic;
 use crate::diag::cleanse::cleanse;
 use crate::model::{Model, Original};
 use crate::report::sketch::{Picture, Plot, Size, Style, View, closing, heading, legend_rows, text, window};
-use crate::report::table::{Limits, Page, Scene, Solved, failed, identify};
+use crate::report::table::{Limits, Names, Page, Scene, Solved, failed};
 use crate::shell::models::{Reading, read};
 use crate::shell::signal::Interrupt;
 use crate::shell::solver::BOXES;
@@ -53,7 +53,15 @@ pub(super) fn sketch(asked: &Sketch, options: &Options, screen: Screen) -> Outco
     let solver = Solver { model, prepared: &prepared, limits, threads, interrupt: &interrupt };
     let scenes: Vec<Scene> = choice.scenarios.iter().map(|&scenario| solver.scene(scenario)).collect();
     let drawer = Drawer { model, prepared: &prepared, axes, size: asked.size, options, screen };
-    present(&drawer.all(&scenes, interrupt.is_raised()), &scenes, &original, asked, screen, interrupt.is_raised())
+    let names = solver.names(&scenes);
+    present(
+        &drawer.all(&scenes, &names, interrupt.is_raised()),
+        &scenes,
+        &original,
+        asked,
+        screen,
+        interrupt.is_raised(),
+    )
 }
 
 fn present(
@@ -91,21 +99,19 @@ struct Drawer<'d> {
 }
 
 impl Drawer<'_> {
-    fn all(&self, scenes: &[Scene], interrupted: bool) -> String {
+    fn all(&self, scenes: &[Scene], names: &Names, interrupted: bool) -> String {
         let solved: Vec<&Solved> = scenes.iter().filter_map(|scene| scene.outcome.as_ref().ok()).collect();
-        let lists: Vec<&[_]> = solved.iter().map(|solved| &solved.equilibria.list[..]).collect();
         let sides: Vec<[f64; 2]> = self.prepared.bounds.iter().map(|bound| [bound.lower, bound.upper]).collect();
         let window = window(self.model, &self.prepared.bounds, &solved, self.axes);
-        let mut ids = identify(&lists).into_iter();
         let page = self.page();
         let mut out = heading(self.model, page);
         if interrupted {
             out.push_str("INTERRUPTED: the search was broken off; this is a partial result.\n");
         }
-        for scene in scenes {
+        for (place, scene) in scenes.iter().enumerate() {
             out.push('\n');
             out.push_str(&match &scene.outcome {
-                Ok(solved) => self.one(scene, solved, &ids.next().unwrap_or_default(), window, &sides),
+                Ok(solved) => self.one(scene, solved, names.of(place), window, &sides),
                 Err(problems) => failed(self.model, scene, problems, &page),
             });
         }

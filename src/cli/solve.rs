@@ -1,13 +1,14 @@
 //! A model's scenarios searched as a command does: with a deadline, a line of progress, until it is interrupted.
 
 use crate::analysis::equilibria::Budget;
+use crate::analysis::passage::Ways;
 use crate::analysis::prepare::Prepared;
 use crate::model::Model;
-use crate::report::table::{Limits, Scene};
+use crate::report::table::{Limits, Names, Scene};
 use crate::shell::clock::Deadline;
 use crate::shell::progress::Meter;
 use crate::shell::signal::Interrupt;
-use crate::shell::solver::scene;
+use crate::shell::solver::{names, scene};
 use crate::shell::workers::Threads;
 
 /// All that the search of a scenario needs.
@@ -30,5 +31,19 @@ impl Solver<'_> {
             observer: Some(&|done| meter.add(done)),
         };
         scene(self.model, self.prepared, scenario, &budget)
+    }
+    /// Names for all that was found, within the time of one scenario.
+    pub(super) fn names(&self, scenes: &[Scene]) -> Names {
+        if let [Scene { outcome: Ok(alone), .. }] = scenes {
+            return Names::alone(alone.equilibria.list.len());
+        }
+        self.with_ways(|ways, stop| names(ways, scenes, stop))
+    }
+
+    /// Does something with the ways between scenarios, until it is to stop.
+    pub(super) fn with_ways<T>(&self, use_them: impl FnOnce(&mut Ways, &dyn Fn() -> bool) -> T) -> T {
+        let deadline = Deadline::after(self.limits.seconds);
+        let mut ways = Ways::new(self.model, self.prepared);
+        use_them(&mut ways, &|| self.interrupt.is_raised() || deadline.is_past())
     }
 }

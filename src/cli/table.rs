@@ -54,6 +54,7 @@ pub(super) fn table(path: Option<&Path>, work: &Work, show: &Show, options: &Opt
     let threads = work.threads.map_or_else(Threads::available, |count| Threads::new(count.into()));
     let solver = Solver { model, prepared: &prepared, limits, threads, interrupt: &interrupt };
     let scenes: Vec<Scene> = choice.scenarios.iter().map(|&scenario| solver.scene(scenario)).collect();
+    let names = solver.names(&scenes);
     let command = command(path, work, show, options, &choice, model);
     let table = Table {
         model,
@@ -64,6 +65,7 @@ pub(super) fn table(path: Option<&Path>, work: &Work, show: &Show, options: &Opt
         bounds: &prepared.bounds,
         limits,
         scenes: &scenes,
+        names: &names,
         interrupted: interrupt.is_raised(),
         columns: selection.as_ref(),
     };

@@ -5,6 +5,7 @@
 use std::sync::Arc;
 
 use crate::analysis::equilibria::{Budget, Progress};
+use crate::analysis::passage::Ways;
 use crate::analysis::paths::follow;
 use crate::analysis::prepare::Prepared;
 use crate::app::study::{TriedSet, World};
@@ -15,7 +16,7 @@ use crate::report::sketch::{Picture, View};
 
 use super::clock::Deadline;
 use super::models::{COMPILED, Reading, compiled, read};
-use super::solver::{BOXES, scene};
+use super::solver::{BOXES, names, scene};
 use super::workers::Threads;
 
 /// What a task is done with.
@@ -42,6 +43,12 @@ pub fn perform(task: Task, means: &Means<'_>) -> Answer {
                 observer: Some(means.observer),
             };
             Answer::Solved(Box::new(scene(&world.original.model, &world.prepared, scenario, &budget)))
+        }
+        Task::Name { world, scenes, budget } => {
+            let deadline = Deadline::after(budget);
+            let mut ways = Ways::new(&world.original.model, &world.prepared);
+            let scenes = scenes.iter().map(|found| &*found.0);
+            Answer::Named(Arc::new(names(&mut ways, scenes, &|| (means.stop)() || deadline.is_past())))
         }
         Task::Paint(painting) => Answer::Painted(paint(&painting)),
         Task::Follow { world, scenario, start, until } => {

@@ -14,7 +14,7 @@ use restpoint::model::system::bounds::Bound;
 use restpoint::model::{Model, ParameterId, SpeciesId};
 use restpoint::num::eigen::Spectrum;
 use restpoint::num::interval::Interval;
-use restpoint::report::table::{Limits, Scene, Selection, Solved, Table};
+use restpoint::report::table::{Limits, Names, Scene, Selection, Solved, Table};
 
 /// A stand-in for the hash of a file.
 pub const SHA256: &str = "00112233445566778899aabbccddeeff00112233445566778899aabbccddeeff";
@@ -250,6 +250,12 @@ pub fn scenes(model: &Model) -> Vec<Scene> {
     vec![scene(0, Ok(present_fleet(model))), scene(1, Ok(half_the_effort(model))), scene(2, Err(vec![problem]))]
 }
 
+/// Names of all equilibria, those of the second scenario out of order.
+pub fn names() -> Names {
+    let ids = |numbers: &[usize]| numbers.iter().map(|number| format!("E{number}")).collect();
+    Names { ids: vec![ids(&[1, 2]), ids(&[1, 3, 2, 4]), Vec::new()], unfollowed: Vec::new() }
+}
+
 /// Uses the table of a model, with the columns asked for.
 pub fn with_table_of<T>(model: &Model, columns: Option<&str>, use_it: impl Fn(&Table<'_>) -> T) -> T {
     let scenes = scenes(model);
@@ -264,6 +270,7 @@ pub fn with_table_of<T>(model: &Model, columns: Option<&str>, use_it: impl Fn(&T
         bounds: &[side(1500.0, false), side(400.25, true)],
         limits: Limits { seconds: 10.0, boxes: 50_000 },
         scenes: &scenes,
+        names: &names(),
         interrupted: true,
         columns: selection.as_ref(),
     })

@@ -28,6 +28,13 @@ fn answered(app: &mut App, id: JobId, answer: Answer) -> Vec<Effect> {
                 study.take(&world, *scene);
             }
         }
+        (Some(Task::Name { .. }), Answer::Named(names)) => {
+            if let Some(study) = &mut app.study {
+                // It was asked for just these: whoever is found since then asks anew.
+                let slots = study.nameable();
+                study.name(slots, &names);
+            }
+        }
         (Some(Task::Prepare(..)), Answer::Prepared(Ok(world))) => prepared(app, world),
         (Some(Task::Prepare(..)), Answer::Prepared(Err(reason))) => app.complain(reason),
         _ => {}
@@ -93,7 +100,7 @@ fn again(app: &mut App, world: &Arc<World>) {
     if is_alike {
         study.sketch = old.sketch.clone();
     }
-    study.name_all();
+    study.names = study.slots.iter().map(|slot| names_before(&old, slot.name())).collect();
     study.choose_named(chosen.as_deref());
     app.study = Some(study);
 }
@@ -106,11 +113,23 @@ fn prepared(app: &mut App, world: Arc<World>) {
     }
     let scenario = world.original.model.scenarios.len().saturating_sub(1);
     let of_file = study.of_file();
-    let found = study.slots.get(of_file).and_then(|slot| slot.found.clone());
+    let base = study.tried.now.base;
+    // What is shown until it is searched: what was tried before, else what its base has.
+    let before =
+        if study.slots.len() > of_file { Some(of_file) } else { study.slots.iter().position(|s| s.scenario == base) };
+    let found = before.and_then(|place| study.slots[place].found.clone());
+    let names = before.map_or_else(Vec::new, |place| study.names(place).to_vec());
+    let wanted = study.name_of_chosen().or(study.wanted.take());
     study.slots.truncate(of_file);
     study.slots.push(Slot { world, scenario, found });
-    let name = study.name_of_chosen();
+    study.names.resize(of_file + 1, Vec::new());
+    study.names[of_file] = names;
     study.current = of_file;
-    study.name_all();
-    study.choose_named(name.as_deref());
+    study.choose_named(wanted.as_deref());
+}
+
+/// Names that a scenario's equilibria had before the file changed.
+fn names_before(old: &Study, scenario: &str) -> Vec<String> {
+    let place = old.slots.iter().position(|slot| slot.name() == scenario);
+    place.map_or_else(Vec::new, |place| old.names(place).to_vec())
 }

@@ -135,7 +135,7 @@ fn renew(app: &mut App) {
         if study.current >= of_file {
             study.current = study.slots.iter().position(|slot| slot.scenario == base).unwrap_or(0);
         }
-        study.name_all();
+        study.names.truncate(of_file);
         study.choose_named(name.as_deref());
     }
 }

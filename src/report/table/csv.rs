@@ -18,9 +18,9 @@ pub fn csv(table: &Table<'_>, style: Style) -> String {
     let fields = Fields::new(table);
     let constants = constants(table);
     let mut text = line(&fields.names(table).into_iter().map(Value::from).collect::<Vec<_>>(), style);
-    for (scene, ids) in table.scenes.iter().zip(table.ids()) {
+    for (scene, ids) in table.named() {
         let (rows, context) = match &scene.outcome {
-            Ok(solved) => (table.rows(scene, solved, &ids), context(table, scene, solved, &ids)),
+            Ok(solved) => (table.rows(scene, solved, ids), context(table, scene, solved, ids)),
             Err(problems) => (Vec::new(), failed(&scene::problems(table.model, problems))),
         };
         let blank = if rows.is_empty() { Some(vec![Value::Null; fields.paths.len()]) } else { None };

@@ -4,7 +4,7 @@
 
 use super::columns::{Glyphs, columns};
 use super::number::human;
-use super::{Limits, Row, Scene, Solved, Table, paths, words};
+use super::{Limits, Names, Row, Scene, Solved, Table, paths, words};
 use crate::analysis::linearise::{Linearisation, Verdict};
 use crate::analysis::measures::Measures;
 use crate::analysis::paths::Destination;
@@ -69,6 +69,7 @@ const GROWTH: f64 = 0.05;
 
 impl<'c> Case<'c> {
     fn with<T>(&self, place: usize, show: impl FnOnce(&Row<'_>) -> T) -> Option<T> {
+        let names = Names { ids: vec![self.ids.to_vec()], unfollowed: Vec::new() };
         let table = Table {
             model: self.model,
             sha256: "",
@@ -78,6 +79,7 @@ impl<'c> Case<'c> {
             bounds: self.bounds,
             limits: Limits { seconds: 0.0, boxes: 0 },
             scenes: std::slice::from_ref(self.scene),
+            names: &names,
             interrupted: false,
             columns: None,
         };

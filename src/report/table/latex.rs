@@ -24,10 +24,10 @@ pub fn latex(table: &Table<'_>, page: Page) -> String {
     if table.interrupted {
         parts.push(format!("\\textbf{{{}}}", words::INTERRUPTED));
     }
-    for (scene, ids) in table.scenes.iter().zip(table.ids()) {
+    for (scene, ids) in table.named() {
         parts.push(format!("\\subsubsection*{{Scenario: {}}}", escaped(scene::name(table.model, scene), &page)));
         match &scene.outcome {
-            Ok(solved) => parts.extend(scenario(table, scene, solved, &ids, &page)),
+            Ok(solved) => parts.extend(scenario(table, scene, solved, ids, &page)),
             Err(problems) => {
                 let all = scene::problems(table.model, problems);
                 parts.extend(all.iter().map(|problem| format!("\\textbf{{FAILED}}: {}", escaped(problem, &page))));

@@ -19,10 +19,10 @@ pub fn markdown(table: &Table<'_>, page: Page) -> String {
     if table.interrupted {
         parts.push(format!("**{}**", words::INTERRUPTED));
     }
-    for (scene, ids) in table.scenes.iter().zip(table.ids()) {
+    for (scene, ids) in table.named() {
         parts.push(format!("## Scenario: {}", escaped(scene::name(table.model, scene), &page)));
         match &scene.outcome {
-            Ok(solved) => parts.extend(scenario(table, scene, solved, &ids, &page)),
+            Ok(solved) => parts.extend(scenario(table, scene, solved, ids, &page)),
             Err(problems) => {
                 let all = scene::problems(table.model, problems);
                 parts.extend(all.iter().map(|problem| format!("**FAILED**: {}", escaped(problem, &page))));

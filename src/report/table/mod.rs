@@ -16,7 +16,7 @@
 //! - in `from_now`: `starts`, how many starts the shares rest on; `cycle`, as in `settles`, where one is reached
 //! - in an equilibrium: the columns of `columns::own`
 //! - in a scenario: `overlay`, what it changes, `{"values": {name: number}, "without": […], "harvest": […], "processes":
-//!   […]}`
+//!   […]}`; `names`, sentences on equilibria with a new name that may be old ones, where there are any
 //! - at the end: `run`, `{"command", "set": {name: number}, "budget": {"seconds", "boxes"}, "interrupted"}`; `caution`
 
 mod columns;
@@ -44,7 +44,8 @@ pub(super) use csv::line;
 pub use data::json;
 pub use facts::{Case, Fact};
 pub use guide::guide;
-pub use identity::identify;
+pub use identity::Names;
+pub(in crate::report) use identity::{percent, why};
 pub use latex::latex;
 pub use markdown::markdown;
 pub use number::{bound, human, human_above, human_below};
@@ -84,6 +85,8 @@ pub struct Table<'t> {
     pub limits: Limits,
     /// The scenarios asked for, in the file's order.
     pub scenes: &'t [Scene],
+    /// The names of their equilibria.
+    pub names: &'t Names,
     /// Whether the search was broken off from outside.
     pub interrupted: bool,
     /// The columns asked for; without, each format shows what it shows by default.
@@ -189,10 +192,16 @@ impl<'t> Row<'t> {
 }
 
 impl<'t> Table<'t> {
-    /// The names of all equilibria, scenario by scenario; none for a scenario that failed.
-    fn ids(&self) -> Vec<Vec<String>> {
-        let list = |scene: &'t Scene| scene.outcome.as_ref().map_or(&[][..], |solved| &solved.equilibria.list);
-        identify(&self.scenes.iter().map(list).collect::<Vec<_>>())
+    /// Every scenario with the names of its equilibria; none for one that failed.
+    pub(in crate::report) fn named(&self) -> impl Iterator<Item = (&'t Scene, &'t [String])> {
+        let names = self.names;
+        self.scenes.iter().enumerate().map(|(place, scene)| (scene, names.of(place)))
+    }
+
+    /// What is to be said of those of a scenario that could not be followed from the one before.
+    fn unfollowed(&self, scene: &Scene) -> Vec<String> {
+        let place = self.scenes.iter().position(|other| other.scenario == scene.scenario);
+        place.map_or_else(Vec::new, |place| self.names.sentences(place))
     }
 
     fn rows<'a>(&'a self, scene: &Scene, solved: &'a Solved, ids: &'a [String]) -> Vec<Row<'a>> {

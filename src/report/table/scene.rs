@@ -66,7 +66,7 @@ pub(super) fn problems(model: &Model, problems: &[Diagnostic]) -> Vec<String> {
     problems.iter().map(one).collect()
 }
 
-/// Sentences on where paths go: from today's stocks, then from each unstable state of coexistence.
+/// Sentences on where paths go: from today's stocks, then from each unstable state of coexistence; and on names.
 pub(super) fn sentences(
     table: &Table<'_>,
     scene: &Scene,
@@ -85,5 +85,5 @@ pub(super) fn sentences(
         let leaving = if is_winding { paths::Leaving::Winding } else { paths::Leaving::Sideways };
         Some(paths::settles_in_words(place, row.id(), leaving, to))
     });
-    from_now.chain(settles).collect()
+    from_now.chain(settles).chain(table.unfollowed(scene)).collect()
 }

@@ -56,10 +56,10 @@ pub(in crate::report) fn clean(text: &str, style: Style) -> String {
 pub fn text(table: &Table<'_>, page: Page) -> String {
     let page = &Page { width: page.width.max(NARROWEST), ..page };
     let mut text = heading(table, page);
-    for (scene, ids) in table.scenes.iter().zip(table.ids()) {
+    for (scene, ids) in table.named() {
         text.push('\n');
         text.push_str(&match &scene.outcome {
-            Ok(solved) => title(table.model, scene, page) + &scenario(table, scene, solved, &ids, page),
+            Ok(solved) => title(table.model, scene, page) + &scenario(table, scene, solved, ids, page),
             Err(problems) => failed(table.model, scene, problems, page),
         });
     }

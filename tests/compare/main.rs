@@ -1,0 +1,8 @@
+//! Scenarios side by side: which equilibrium is which, and how that is shown.
+#![expect(clippy::panic, clippy::unwrap_used, reason = "a test fails by panicking")]
+
+#[path = "../common/mod.rs"]
+mod common;
+
+mod passage;
+mod support;
