@@ -17,7 +17,7 @@ use crate::report::table::Solved;
 pub fn wants(app: &App) -> Vec<Task> {
     let mut tasks = Vec::new();
     if let Some((source, edition)) = &app.reading {
-        tasks.push(Task::Read(source.clone(), *edition));
+        tasks.push(Task::Read(source.clone(), app.set.clone(), *edition));
     }
     let Some(study) = &app.study else { return tasks };
     tasks.extend(preparing(study));
@@ -50,7 +50,10 @@ fn search(slot: &Slot, budget: f64) -> Task {
 
 /// Columns and rows of the sketch on the present screen.
 pub fn sketch_size(app: &App, study: &Study) -> Size {
-    let area = geometry::equilibria(app.size, study.count()).sketch;
+    let area = match app.screen {
+        Screen::Values => geometry::values(app.size, study.count()).sketch,
+        _ => geometry::equilibria(app.size, study.count()).sketch,
+    };
     Size { columns: area.columns.into(), rows: area.rows.into() }
 }
 
