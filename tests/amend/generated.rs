@@ -2,9 +2,45 @@
 
 use proptest::collection::vec;
 use proptest::prelude::*;
+use restpoint::model::amend::{Refusal, with_scenario};
 use restpoint::model::load::NoFiles;
 
 use crate::support::{addition, check};
+
+const EXAMPLE: &str = include_str!("../files/contract_example.yaml");
+
+/// Pieces that mean something to a reader of YAML, most of them harmless between tokens.
+const PIECES: &[&str] = &[
+    "",
+    " ",
+    "\n",
+    "\n\n",
+    "\n  ",
+    " # x\n",
+    "# x",
+    ",",
+    "&a ",
+    "*a",
+    "{}",
+    "{",
+    "}",
+    "|\n",
+    ">-\n",
+    "? ",
+    ": ",
+    "null",
+    "~",
+    "'",
+    "\"",
+    "é",
+    "\r\n",
+    "...\n",
+    "---\n",
+    "scenarios",
+    "values: ",
+    "- ",
+    "\t",
+];
 
 const NAMES: &[&str] = &["first", "'second plan'", "\"third: #\"", "4", "&k fifth", "? sixth", "yes"];
 const PLAIN: &[&str] = &["first", "second plan", "third: #", "4", "fifth", "sixth", "yes"];
@@ -70,24 +106,21 @@ impl Written {
     }
 
     fn block(&self) -> String {
-        let mut text = format!("scenarios:{}\n", COMMENTS[self.comments[0]]);
         let margin = " ".repeat(self.indent);
-        for (place, &name) in self.names.iter().enumerate() {
-            let (body, lines) = self.bodies[place];
+        let entries = self.names.iter().enumerate().map(|(place, &name)| {
+            let (body, below) = self.bodies[place];
             let comment = COMMENTS[self.comments[place]];
-            let head = NAMES[name];
-            let (head, colon) =
-                if head.starts_with('?') { (format!("{head}\n{margin}"), ":") } else { (head.into(), ":") };
-            if lines && !head.starts_with('?') {
-                text += &format!("{margin}{head}{colon}{comment}\n");
-                for line in BLOCKS[body % BLOCKS.len()] {
-                    text += &format!("{margin}   {line}\n");
-                }
-            } else {
-                text += &format!("{margin}{head}{colon} {}{comment}\n", self.overlay(place));
+            // What follows a question mark has its colon on the next line.
+            let asked = NAMES[name].starts_with('?');
+            let head = if asked { format!("{}\n{margin}", NAMES[name]) } else { NAMES[name].to_owned() };
+            if !below || asked {
+                return format!("{margin}{head}: {}{comment}\n", self.overlay(place));
             }
-        }
-        text
+            let lines: Vec<String> =
+                BLOCKS[body % BLOCKS.len()].iter().map(|line| format!("{margin}   {line}\n")).collect();
+            format!("{margin}{head}:{comment}\n{}", lines.concat())
+        });
+        format!("scenarios:{}\n{}", COMMENTS[self.comments[0]], entries.collect::<Vec<_>>().concat())
     }
 
     /// An anchor may stand but once.
@@ -140,5 +173,28 @@ proptest! {
         let base = written.names.get(base).map(|&at| PLAIN[at]);
         prop_assume!(!PLAIN.contains(&name.as_str()) && name != "base");
         check(&text, &addition(&name, base, &[("E", value)]), &NoFiles);
+    }
+
+    /// Whatever is done to a model: no panic, and either a good text or none.
+    #[test]
+    fn whatever_is_changed_the_answer_is_a_good_text_or_none(
+        changes in vec((any::<prop::sample::Index>(), 0_usize..4, 0..PIECES.len()), 0..3),
+        from_scenarios in any::<bool>(),
+    ) {
+        let mut text: Vec<char> = EXAMPLE.chars().collect();
+        for (at, cut, piece) in changes {
+            // Half of the changes are to the section that matters.
+            let first = if from_scenarios { text.len().saturating_sub(260) } else { 0 };
+            let at = first + at.index(text.len() - first + 1);
+            text.splice(at..(at + cut).min(text.len()), PIECES[piece].chars());
+        }
+        let text: String = text.into_iter().collect();
+        let tried = addition("tried", None, &[("r", 2.0)]);
+        match with_scenario(&text, &tried, &NoFiles) {
+            Ok(_) => _ = check(&text, &tried, &NoFiles),
+            Err(Refusal::Unsound | Refusal::NoPlace(_) | Refusal::Taken(_) | Refusal::NoParameter(_)) => {}
+            // The text after the change is one that no rule for a place foresees; it must stay rare.
+            Err(refusal) => prop_assert!(false, "{}: {}", refusal, text),
+        }
     }
 }

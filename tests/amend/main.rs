@@ -1,6 +1,8 @@
 //! Saving tried values as a scenario in the text of a model file: nothing else in the text may change, and the file must
 //! mean what was meant.
 
+#![expect(clippy::expect_used, clippy::panic, reason = "what was to be there is not: the test has failed")]
+
 mod generated;
 mod support;
 

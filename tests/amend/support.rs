@@ -5,7 +5,8 @@ use std::path::{Path, PathBuf};
 
 use restpoint::model::amend::{Addition, with_scenario};
 use restpoint::model::load::{Files, load};
-use restpoint::model::{Harvest, Model, Process, Term};
+use restpoint::model::{Harvest, Model, ParameterId, Process, Term};
+use unicode_normalization::UnicodeNormalization;
 
 pub(crate) fn addition(name: &str, base: Option<&str>, values: &[(&str, f64)]) -> Addition {
     let values = values.iter().map(|&(name, value)| (name.to_owned(), value)).collect();
@@ -60,14 +61,8 @@ pub(crate) fn check(text: &str, tried: &Addition, files: &dyn Files) -> String {
     for scenario in 0..added {
         assert_eq!(meaning(&old, scenario, &[]), meaning(&amended, scenario, &[]), "{new}");
     }
-    let known = |name: &str| {
-        load("m", text.as_bytes(), files).0.and_then(|model| {
-            model.parameters.iter().position(|parameter| {
-                let pair = [parameter.name.as_str(), name];
-                pair[0] == pair[1] || pair[0] == "\u{e9}" && pair[1] == "e\u{301}"
-            })
-        })
-    };
+    let composed = |name: &str| name.nfc().collect::<String>();
+    let known = |name: &str| old.parameters.iter().position(|parameter| parameter.name == composed(name));
     let set: Vec<(usize, f64)> = tried.values.iter().filter_map(|(name, value)| Some((known(name)?, *value))).collect();
     assert_eq!(set.len(), tried.values.len());
     let (mut wanted, mut found) = (meaning(&old, base.unwrap_or(usize::MAX), &set), meaning(&amended, added, &[]));
@@ -96,7 +91,7 @@ struct Meaning {
 }
 
 fn meaning(model: &Model, scenario: usize, set: &[(usize, f64)]) -> Meaning {
-    let set: Vec<_> = set.iter().map(|&(id, value)| (restpoint::model::ParameterId(id), value)).collect();
+    let set: Vec<_> = set.iter().map(|&(id, value)| (ParameterId(id), value)).collect();
     let values = model.values(scenario, &set).ok();
     let processes = model.processes_under(scenario).into_iter().map(process);
     let harvests = model.harvests_under(scenario).into_iter().map(harvest);
@@ -118,5 +113,5 @@ fn harvest(harvest: &Harvest) -> String {
 }
 
 fn terms(terms: &[Term]) -> String {
-    terms.iter().map(|term| format!("{}: {}; ", term.species.0, term.formula.text)).collect()
+    terms.iter().map(|term| format!("{}: {}", term.species.0, term.formula.text)).collect::<Vec<_>>().join("; ")
 }

@@ -1,7 +1,7 @@
 //! Where a new scenario goes into the text: after the last one, in the style of those that are there.
 //!
-//! Only bytes are added, but where an explicit null stands for no scenarios: it gives way. Comments stay where they are; one that is as
-//! far in as the scenarios and follows the last of them belongs to them. Start at [`edits`].
+//! Only bytes are added, but where an explicit null stands for no scenarios: it gives way. Comments stay where they are;
+//! one that is as far in as the scenarios and follows the last of them belongs to them. Start at [`edits`].
 
 use super::syntax::{Document, Kind, Node};
 use super::write::{Part, lines, pair};
@@ -25,70 +25,47 @@ impl Edit {
 pub(super) type Entries = [(String, Part)];
 
 /// The changes that add a scenario, in the order of the text; else why there is no place for it, as it reads after
-/// "because".
+/// "because". `unwritten` are the scenarios that are there although the file writes none.
 pub(super) fn edits(text: &str, document: &Document, new: &Entries, unwritten: &Entries) -> Result<Vec<Edit>, String> {
-    let Kind::Mapping { flow, entries } = &document.root.kind else { return Err("the file is no map".into()) };
-    let first: Vec<&(String, Part)> = unwritten.iter().chain(new).collect();
-    let Some((key, scenarios)) = document.root.get("scenarios") else {
-        return if *flow {
-            within_flow(text, &document.root, &format!("scenarios: {}", flow_map(&first)))
-        } else {
-            let indent = entries.first().map_or(0, |(key, _)| margin(text, key.span.start));
-            Ok(vec![new_section(text, document.end, indent, step(text, &document.root), &first)])
-        };
+    let root = &document.root;
+    let Kind::Mapping { flow, entries } = &root.kind else { return Err("the file is no map".into()) };
+    let all = [unwritten, new].concat();
+    let margin = entries.first().map_or(0, |(key, _)| margin(text, key.span.start));
+    let below = || block(&all, margin + step(text, root), step(text, root));
+    let Some((_, scenarios)) = root.get("scenarios") else {
+        if *flow {
+            return within_flow(text, root, &format!("scenarios: {}", brackets(&all)));
+        }
+        let section = std::iter::once(format!("{}scenarios:", " ".repeat(margin))).chain(below());
+        return Ok(vec![at_line(text, document.end, &section.collect::<Vec<_>>())]);
     };
+    let end = scenarios.span.end;
     match &scenarios.kind {
-        Kind::Alias => Err("its \"scenarios\" are written as an alias".into()),
-        Kind::Mapping { flow: true, .. } => within_flow(
-            text,
-            scenarios,
-            &new.iter().map(|(name, part)| pair(name, part)).collect::<Vec<_>>().join(", "),
-        ),
+        Kind::Mapping { flow: true, .. } => within_flow(text, scenarios, &pairs(new)),
         Kind::Mapping { flow: false, entries } => after_last(text, scenarios, entries, new),
-        Kind::Scalar { value, style: Style::Plain } => Ok(vec![instead_of_null(
-            text,
-            scenarios,
-            value,
-            *flow,
-            margin(text, key.span.start),
-            step(text, &document.root),
-            &first,
-        )]),
+        Kind::Scalar { value, style: Style::Plain } if !value.is_empty() => {
+            Ok(vec![Edit { span: Span::new(end - value.len(), end), text: brackets(&all) }])
+        }
+        Kind::Scalar { style: Style::Plain, .. } if *flow => {
+            let gap = if text[..end].ends_with(char::is_whitespace) { "" } else { " " };
+            Ok(vec![Edit::insert(end, format!("{gap}{}", brackets(&all)))])
+        }
+        Kind::Scalar { style: Style::Plain, .. } => Ok(vec![at_line(text, line_end(text, end), &below())]),
+        Kind::Alias => Err("its \"scenarios\" are written as an alias".into()),
         Kind::Scalar { .. } | Kind::Sequence { .. } => Err("its \"scenarios\" are no map".into()),
     }
 }
 
-fn flow_map(entries: &[&(String, Part)]) -> String {
-    let pairs: Vec<String> = entries.iter().map(|(name, part)| pair(name, part)).collect();
-    format!("{{{}}}", pairs.join(", "))
+fn pairs(entries: &Entries) -> String {
+    entries.iter().map(|(name, part)| pair(name, part)).collect::<Vec<_>>().join(", ")
 }
 
-/// A section at the end of the document, which may stop without a line break.
-fn new_section(text: &str, end: usize, indent: usize, step: usize, entries: &[&(String, Part)]) -> Edit {
-    let head = format!("{}scenarios:", " ".repeat(indent));
-    let below = entries.iter().flat_map(|(name, part)| lines(name, part, indent + step, step));
-    at_line(text, end, &std::iter::once(head).chain(below).collect::<Vec<_>>())
+fn brackets(entries: &Entries) -> String {
+    format!("{{{}}}", pairs(entries))
 }
 
-fn instead_of_null(
-    text: &str,
-    null: &Node,
-    value: &str,
-    flow: bool,
-    indent: usize,
-    step: usize,
-    entries: &[&(String, Part)],
-) -> Edit {
-    if !value.is_empty() {
-        let start = null.span.end - value.len();
-        return Edit { span: Span::new(start, null.span.end), text: flow_map(entries) };
-    }
-    if flow {
-        let gap = if text[..null.span.end].ends_with(char::is_whitespace) { "" } else { " " };
-        return Edit::insert(null.span.end, format!("{gap}{}", flow_map(entries)));
-    }
-    let below: Vec<String> = entries.iter().flat_map(|(name, part)| lines(name, part, indent + step, step)).collect();
-    at_line(text, line_end(text, null.span.end), &below)
+fn block(entries: &Entries, margin: usize, step: usize) -> Vec<String> {
+    entries.iter().flat_map(|(name, part)| lines(name, part, margin, step)).collect()
 }
 
 /// After the last entry of a block map, and the comments that belong to it.
@@ -104,8 +81,7 @@ fn after_last(text: &str, map: &Node, entries: &[(Node, Node)], new: &Entries) -
     let end = if ended { last } else { line_end(text, last) };
     let end = past_comments(text, end, indent);
     let step = entries.iter().find_map(|(_, value)| inner_step(text, value, indent)).unwrap_or(2);
-    let entry: Vec<String> = new.iter().flat_map(|(name, part)| lines(name, part, indent, step)).collect();
-    Ok(vec![at_line(text, end, &entry)])
+    Ok(vec![at_line(text, end, &block(new, indent, step))])
 }
 
 /// Past the comment lines that follow and are at least as far in, with the empty lines between them.

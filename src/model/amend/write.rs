@@ -11,6 +11,7 @@ use crate::model::yaml::Typed;
 const WIDTH: usize = 110;
 
 /// A part of a scenario on its way into the file.
+#[derive(Clone)]
 pub(super) enum Part {
     /// A number.
     Number(f64),
