@@ -5,6 +5,7 @@
 //! numbers, lanes, intervals and jets. Start reading at [`model`]; the module map stands in `DEVELOPERS.md`.
 
 pub mod analysis;
+pub mod app;
 pub mod cli;
 pub mod diag;
 pub mod expr;
