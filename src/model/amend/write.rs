@@ -1,7 +1,7 @@
 //! Names, numbers and parts of a model as YAML that the loader reads back as what was meant.
 //!
 //! Only what is read from a checked tree is written, so anchors are gone and aliases written out. Comments and layout of
-//! what is copied are not kept. Start at [`entry`].
+//! what is copied are not kept. Start at [`Part`].
 
 use crate::model::events::Style;
 use crate::model::tree::{Kind, Node, Scalar};
@@ -65,14 +65,14 @@ pub(super) fn lines(name: &str, part: &Part, indent: usize, step: usize) -> Vec<
     }
 }
 
-/// A number in the fewest digits that read back the same.
+/// A number in the fewest digits that read back the same; with a power of ten where it would be long.
 fn number(value: f64) -> String {
     // Without its point, the sign of a zero would be lost.
     if value == 0.0 && value.is_sign_negative() {
         return "-0.0".to_owned();
     }
-    let (plain, power) = (value.to_string(), format!("{value:e}"));
-    if plain.len() <= power.len().max(12) { plain } else { power }
+    let usual = value == 0.0 || (1e-5..1e12).contains(&value.abs());
+    if usual { value.to_string() } else { format!("{value:e}") }
 }
 
 /// A name as a key: as it is where every reader of YAML takes it for a text, else in double quotes.
