@@ -17,6 +17,8 @@ pub struct World {
     pub original: Original,
     /// Its equations and search box.
     pub prepared: Prepared,
+    /// Parameters set for the whole session, over file and scenario.
+    pub set: Vec<(ParameterId, f64)>,
 }
 
 impl PartialEq for World {
@@ -78,6 +80,8 @@ pub struct Tried {
     pub redo: Vec<TriedSet>,
     /// The edition of the world that it is to be searched in.
     pub edition: u64,
+    /// Whether it is to be looked at as soon as it is ready.
+    pub follow: bool,
 }
 
 /// A model that is open.
@@ -105,7 +109,7 @@ pub struct Study {
     pub sketch: Sketch,
     /// Values that were tried.
     pub tried: Tried,
-    /// The parameter that is selected where values are tried.
+    /// The parameter that is selected where values are tried, by its place in [`Study::parameters`].
     pub parameter: usize,
     /// The first parameter that is shown.
     pub parameters_from: usize,
@@ -159,7 +163,7 @@ impl Study {
 
     /// How many slots are those of the file's scenarios.
     pub fn of_file(&self) -> usize {
-        self.slots.iter().filter(|slot| slot.scenario < self.model().scenarios.len()).count()
+        self.slots.iter().filter(|slot| slot.world == self.world).count()
     }
 
     /// Whether a slot holds tried values.
@@ -197,7 +201,8 @@ impl Study {
 
     /// The slots whose equilibria can be named together: all that are searched in the world that they belong to.
     pub fn nameable(&self) -> Vec<usize> {
-        (0..self.slots.len()).filter(|&k| self.slots[k].is_fresh()).collect()
+        let is_present = |slot: &Slot| slot.world == self.world || slot.world.edition == self.tried.edition;
+        (0..self.slots.len()).filter(|&k| self.slots[k].is_fresh() && is_present(&self.slots[k])).collect()
     }
 
     /// The name of the equilibrium that is selected.

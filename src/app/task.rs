@@ -12,8 +12,8 @@ use crate::report::table::{Names, Scene, Solved};
 /// What takes time. Two tasks that are equal have the same answer.
 #[derive(Clone, Debug, PartialEq)]
 pub enum Task {
-    /// Reads a model and makes it ready; the number tells one reading from another.
-    Read(Source, u64),
+    /// Reads a model and makes it ready, with parameters set by name; the number tells one reading from another.
+    Read(Source, Vec<(String, f64)>, u64),
     /// Makes a model with a tried scenario at its end ready; the number is the edition that it gets.
     Prepare(Arc<World>, TriedSet, u64),
     /// Searches a scenario.

@@ -17,7 +17,7 @@ use crate::report::table::Solved;
 pub fn wants(app: &App) -> Vec<Task> {
     let mut tasks = Vec::new();
     if let Some((source, edition)) = &app.reading {
-        tasks.push(Task::Read(source.clone(), *edition));
+        tasks.push(Task::Read(source.clone(), app.set.clone(), *edition));
     }
     let Some(study) = &app.study else { return tasks };
     tasks.extend(preparing(study));
@@ -48,9 +48,10 @@ fn searches<'s>(app: &'s App, study: &'s Study) -> impl Iterator<Item = Task> + 
 /// Names for all that is found.
 pub(super) fn naming(app: &App, study: &Study) -> Option<Task> {
     let found = |slot: &Slot| slot.found.as_ref().map(|(_, scene)| Found(Arc::clone(scene)));
-    let scenes: Vec<Found> = study.nameable().iter().filter_map(|&k| found(&study.slots[k])).collect();
+    let slots: Vec<&Slot> = study.nameable().iter().filter_map(|&k| study.slots.get(k)).collect();
+    let scenes: Vec<Found> = slots.iter().filter_map(|slot| found(slot)).collect();
     // The world of the tried values has the scenarios of the file as well.
-    let world = study.slots.last().filter(|slot| slot.is_fresh()).map_or(&study.world, |slot| &slot.world);
+    let world = slots.last().map_or(&study.world, |slot| &slot.world);
     (!scenes.is_empty()).then(|| Task::Name { world: Arc::clone(world), scenes, budget: app.budget })
 }
 
@@ -60,7 +61,10 @@ fn search(slot: &Slot, budget: f64) -> Task {
 
 /// Columns and rows of the sketch on the present screen.
 pub fn sketch_size(app: &App, study: &Study) -> Size {
-    let area = geometry::equilibria(app.size, study.count()).sketch;
+    let area = match app.screen {
+        Screen::Values => geometry::values(app.size, study.count()).sketch,
+        _ => geometry::equilibria(app.size, study.count()).sketch,
+    };
     Size { columns: area.columns.into(), rows: area.rows.into() }
 }
 
