@@ -117,6 +117,18 @@ impl Bench {
         }
     }
 
+    /// How many tasks are put off.
+    pub(crate) fn waiting(&self) -> usize {
+        self.waiting.len()
+    }
+
+    /// Does one of the tasks that are put off; what it asks for is put off.
+    pub(crate) fn do_one(&mut self, place: usize) {
+        let Some((id, task)) = self.waiting.remove(place) else { return };
+        let means = Means { threads: Threads::new(1), stop: &|| false, observer: &|_| {} };
+        self.tell(Msg::Answered(id, perform(task, &means)));
+    }
+
     /// What was asked of the outside since the last time.
     pub(crate) fn taken(&mut self) -> Vec<Effect> {
         std::mem::take(&mut self.asked)

@@ -4,3 +4,4 @@
 
 mod bench;
 mod skeleton;
+mod walk;
