@@ -25,7 +25,9 @@ fn is_like(found: &Fate, expected: &Fate) -> bool {
             at == place && turns.len() == others.len() && turns.iter().zip(others).all(|(a, b)| near(*a, *b))
         }
         // The places of obstacles are those of the last step before them.
-        (Fate::NotFollowed(Reason::Crossing(at)), Fate::NotFollowed(Reason::Crossing(place))) => (at - place).abs() <= 1e-6,
+        (Fate::NotFollowed(Reason::Crossing(at)), Fate::NotFollowed(Reason::Crossing(place))) => {
+            (at - place).abs() <= 1e-6
+        }
         (Fate::NotFollowed(Reason::Rough(at)), Fate::NotFollowed(Reason::Rough(place))) => (at - place).abs() <= 1e-6,
         (found, expected) => found == expected,
     }
