@@ -19,6 +19,7 @@ use crate::shell::{files, terminal};
 mod arguments;
 mod check;
 mod choice;
+mod compare;
 mod model;
 mod sketch;
 mod solve;
@@ -139,6 +140,7 @@ fn perform(arguments: &Arguments, screen: Screen) -> Outcome {
         Some(Command::Table { show, .. }) if show.is_help() => table::columns(options),
         Some(Command::Table { model: None, .. }) => Outcome::only(NO_MODEL.to_owned(), Exit::Usage),
         Some(Command::Table { model, work, show }) => table::table(model.as_deref(), work, show, options, screen),
+        Some(Command::Compare { model, work }) => compare::compare(model, work, options, screen),
         Some(Command::Sketch(asked)) => sketch::sketch(asked, options, screen),
         None if arguments.show.is_help() => table::columns(options),
         None => table::table(arguments.model.as_deref(), &arguments.work, &arguments.show, options, screen),
