@@ -5,9 +5,12 @@ use super::super::table::{Table, human, percent, why};
 use super::{Change, Comparison, Entry, Identity};
 use crate::analysis::passage::Fate;
 
+/// Numbers that differ by this share, or less, differ by rounding.
+const ROUNDING: f64 = 1e-12;
+
 /// How a number differs from that of the reference: a sign, and the share where both are positive, else the amount.
 pub(super) fn difference(from: f64, to: f64) -> String {
-    if from == to {
+    if (to - from).abs() <= ROUNDING * from.abs().max(to.abs()) {
         return "=".to_owned();
     }
     let sign = if to > from { "+" } else { "-" };
@@ -117,6 +120,7 @@ mod tests {
     fn differences_have_a_sign_and_are_never_rounded_to_none() {
         for (from, to, text) in [
             (80.0, 80.0, "="),
+            (24.0, 24.000_000_000_000_004, "="),
             (80.0, 100.0, "+25.0 %"),
             (80.0, 20.0, "-75.0 %"),
             (1.0, 1.000_000_1, "+under 0.1 %"),
