@@ -19,24 +19,24 @@
 //!   […]}`; `names`, sentences on equilibria with a new name that may be old ones, where there are any
 //! - at the end: `run`, `{"command", "set": {name: number}, "budget": {"seconds", "boxes"}, "interrupted"}`; `caution`
 
-mod columns;
-mod csv;
+pub(in crate::report) mod columns;
+pub(in crate::report) mod csv;
 mod data;
 mod facts;
 mod glossary;
 mod guide;
 mod identity;
-mod latex;
-mod layout;
-mod markdown;
+pub(in crate::report) mod latex;
+pub(in crate::report) mod layout;
+pub(in crate::report) mod markdown;
 mod number;
-mod paths;
-mod provenance;
-mod scene;
+pub(in crate::report) mod paths;
+pub(in crate::report) mod provenance;
+pub(in crate::report) mod scene;
 mod selection;
-mod sheet;
-mod text;
-mod words;
+pub(in crate::report) mod sheet;
+pub(in crate::report) mod text;
+pub(in crate::report) mod words;
 
 pub use columns::{COLUMNS, Column, Shown, Unit, columns};
 pub use csv::csv;
@@ -204,13 +204,25 @@ impl<'t> Table<'t> {
         place.map_or_else(Vec::new, |place| self.names.sentences(place))
     }
 
-    fn rows<'a>(&'a self, scene: &Scene, solved: &'a Solved, ids: &'a [String]) -> Vec<Row<'a>> {
+    pub(in crate::report) fn rows<'a>(&'a self, scene: &Scene, solved: &'a Solved, ids: &'a [String]) -> Vec<Row<'a>> {
         let list = solved.equilibria.list.iter().enumerate();
         list.map(|(place, equilibrium)| Row { table: self, scenario: scene.scenario, solved, ids, place, equilibrium })
             .collect()
     }
 
-    fn symbol(&self, species: usize) -> Option<&'t str> {
+    /// One equilibrium of a scenario as a row.
+    pub(in crate::report) fn row<'a>(
+        &'a self,
+        scene: &Scene,
+        solved: &'a Solved,
+        ids: &'a [String],
+        place: usize,
+    ) -> Option<Row<'a>> {
+        let equilibrium = solved.equilibria.list.get(place)?;
+        Some(Row { table: self, scenario: scene.scenario, solved, ids, place, equilibrium })
+    }
+
+    pub(in crate::report) fn symbol(&self, species: usize) -> Option<&'t str> {
         self.model.species.get(species).map(|species| species.symbol.as_str())
     }
 
@@ -230,12 +242,12 @@ impl<'t> Table<'t> {
 }
 
 /// A number that reads back the same; without a minus on zero, null where it is not finite.
-fn exact(x: f64) -> Value {
+pub(in crate::report) fn exact(x: f64) -> Value {
     // −0 + 0 = 0.
     (x + 0.0).into()
 }
 
 /// The same, and null where there is none.
-fn optional(x: Option<f64>) -> Value {
+pub(in crate::report) fn optional(x: Option<f64>) -> Value {
     x.map_or(Value::Null, exact)
 }
