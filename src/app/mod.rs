@@ -7,6 +7,7 @@
 //! its drawing in `ui`.
 
 pub mod action;
+pub mod beside;
 pub mod catalogue;
 pub mod desk;
 pub mod geometry;

@@ -3,6 +3,7 @@
 use std::sync::Arc;
 
 use super::Source;
+use super::beside::Beside;
 use super::sketch::Sketch;
 use crate::analysis::prepare::Prepared;
 use crate::model::{Model, Original, ParameterId};
@@ -105,6 +106,8 @@ pub struct Study {
     pub from: usize,
     /// The first number of the selected equilibrium that is shown.
     pub facts_from: usize,
+    /// What is selected where scenarios stand side by side.
+    pub beside: Beside,
     /// What the sketch shows.
     pub sketch: Sketch,
     /// Values that were tried.
@@ -129,6 +132,7 @@ impl Study {
             wanted: None,
             from: 0,
             facts_from: 0,
+            beside: Beside::default(),
             sketch: Sketch::default(),
             tried: Tried::default(),
             parameter: 0,

@@ -9,14 +9,15 @@ use crate::analysis::passage::Ways;
 use crate::analysis::paths::follow;
 use crate::analysis::prepare::Prepared;
 use crate::app::study::{TriedSet, World};
-use crate::app::task::Painting;
+use crate::app::task::{Compared, Found, Painting};
 use crate::app::{Answer, Read, Source, Task};
 use crate::model::{Model, Name, Original, ParameterId};
 use crate::report::sketch::{Picture, View};
+use crate::report::table::{Names, Scene};
 
 use super::clock::Deadline;
 use super::models::{COMPILED, Reading, compiled, read};
-use super::solver::{BOXES, names, scene};
+use super::solver::{BOXES, names, passages, scene};
 use super::workers::Threads;
 
 /// What a task is done with.
@@ -50,12 +51,31 @@ pub fn perform(task: Task, means: &Means<'_>) -> Answer {
             let scenes = scenes.iter().map(|found| &*found.0);
             Answer::Named(Arc::new(names(&mut ways, scenes, &|| (means.stop)() || deadline.is_past())))
         }
+        Task::Compare { world, scenes, names, budget } => {
+            Answer::Compared(Arc::new(compare(world, &scenes, names, budget, means)))
+        }
         Task::Paint(painting) => Answer::Painted(paint(&painting)),
         Task::Follow { world, scenario, start, until } => {
             let subject = world.prepared.subject(&world.original.model, scenario).ok();
             Answer::Followed(subject.map(|mut subject| Arc::new(follow(&mut subject, &start, until, &means.stop))))
         }
     }
+}
+
+/// Follows what was found in the first of several scenarios to each of the others.
+fn compare(world: Arc<World>, scenes: &[Found], ids: Vec<Vec<String>>, budget: f64, means: &Means<'_>) -> Compared {
+    let deadline = Deadline::after(budget);
+    let mut ways = Ways::new(&world.original.model, &world.prepared);
+    let scenes: Vec<Scene> = scenes.iter().map(|found| (*found.0).clone()).collect();
+    let passages = passages(&mut ways, &scenes, &|| (means.stop)() || deadline.is_past());
+    let mut all: Vec<String> = Vec::new();
+    for id in ids.iter().flatten() {
+        if !all.contains(id) {
+            all.push(id.clone());
+        }
+    }
+    let names = Names { unfollowed: vec![Vec::new(); ids.len()], ids };
+    Compared { world, scenes, names, passages, ids: all }
 }
 
 fn read_source(source: &Source, set: &[(String, f64)], edition: u64) -> Read {

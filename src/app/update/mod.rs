@@ -11,6 +11,7 @@ mod reread;
 mod sketch;
 mod values;
 
+use super::beside::{ids, parts, shown};
 use super::geometry::{equilibria, listed, scrolled, values as values_parts};
 use super::keymap::{Place, lookup, place};
 use super::wants::wants;
@@ -52,6 +53,10 @@ fn settle(app: &mut App) {
     let count = study.count();
     study.chosen = study.chosen.min(count.saturating_sub(1));
     study.from = scrolled(study.from, study.chosen, count, listed(equilibria(size, count).list));
+    let ids = ids(study, size).len();
+    study.beside.row = study.beside.row.min(ids.saturating_sub(1));
+    let parts = parts(size, shown(study, size).len(), ids);
+    study.beside.from = scrolled(study.beside.from, study.beside.row, ids, usize::from(parts.list.rows.max(2)) - 1);
     let parameters = study.model().parameters.len();
     study.parameter = study.parameter.min(parameters.saturating_sub(1));
     let room = listed(values_parts(size, count).list);

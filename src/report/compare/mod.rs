@@ -33,6 +33,7 @@ pub use latex::latex;
 pub use markdown::markdown;
 pub use quantity::{Measured, Quantity};
 pub use text::text;
+pub use words::difference;
 
 use super::table::{Scene, Solved, Table};
 use crate::analysis::passage::{Fate, Passage};
@@ -114,6 +115,19 @@ impl<'c> Comparison<'c> {
     /// What is known of the scenario at a place among those shown.
     pub fn solved(&self, scene: usize) -> Option<&'c Solved> {
         self.table.scenes.get(scene).and_then(|scene: &Scene| scene.outcome.as_ref().ok())
+    }
+
+    /// A sentence on what became of an equilibrium in the scenario at a place, where there is anything to be said.
+    pub fn sentence(&self, identity: &Identity, scene: usize) -> Option<String> {
+        words::sentence(self, identity, scene)
+    }
+
+    /// Where today's stocks lead in the scenario at a place, in a word or two; `None` where that is not known.
+    pub fn leads(&self, scene: usize) -> Option<String> {
+        let from = self.solved(scene)?.assessment.from_now.as_ref()?;
+        let scenario = self.table.scenes.get(scene)?.scenario;
+        let at = super::table::paths::Place { table: self.table, scenario, ids: self.table.names.of(scene) };
+        Some(super::table::paths::word(at, &from.reaches))
     }
 
     /// The entry of the reference.

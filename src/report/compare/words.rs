@@ -9,7 +9,7 @@ use crate::analysis::passage::Fate;
 const ROUNDING: f64 = 1e-12;
 
 /// How a number differs from that of the reference: a sign, and the share where both are positive, else the amount.
-pub(super) fn difference(from: f64, to: f64) -> String {
+pub fn difference(from: f64, to: f64) -> String {
     if (to - from).abs() <= ROUNDING * from.abs().max(to.abs()) {
         return "=".to_owned();
     }
