@@ -45,7 +45,7 @@ pub fn came_from(view: &View<'_>, window: &Window, path: &Path, style: Style) ->
     let said = match (outside, path.ended) {
         (Some(0), _) => "starts beyond the drawing".to_owned(),
         (Some(knot), _) => {
-            let time = path.times.get(knot).copied().unwrap_or(0.0);
+            let time = crossing(path, knot, &is_inside);
             format!("came from beyond the drawing {} {unit} ago", human(time.abs()))
         }
         (None, Ended::NoPast) if view.step().is_some() => "a map cannot be followed backwards".to_owned(),
@@ -62,6 +62,19 @@ pub fn came_from(view: &View<'_>, window: &Window, path: &Path, style: Style) ->
         },
     };
     sentence(&capital(&said), style)
+}
+
+/// When a path that is inside up to the state before `knot`, and outside at it, crosses over.
+fn crossing(path: &Path, knot: usize, is_inside: &dyn Fn(&Vec<f64>) -> bool) -> f64 {
+    let (Some(&before), Some(&after)) = (path.times.get(knot.saturating_sub(1)), path.times.get(knot)) else {
+        return path.until();
+    };
+    let (mut inside, mut outside) = (before, after);
+    for _ in 0..HALVINGS {
+        let middle = f64::midpoint(inside, outside);
+        if is_inside(&path.at(middle, false)) { inside = middle } else { outside = middle }
+    }
+    outside
 }
 
 fn holds_x(window: &Window, [x, _]: [f64; 2]) -> bool {
