@@ -219,6 +219,10 @@ fn paths(canvas: &mut Canvas, view: &View<'_>, extras: &Extras<'_>, frame: &Fram
         let Some(path) = path else { continue };
         let trace = Trace::new(view, frame, path);
         trace.cells.iter().for_each(|&cell| canvas.put(cell, mark));
+        // Of two paths only the one forwards has moments: digits on both would not say which they belong to.
+        if mark == Mark::Backwards && extras.forwards.is_some() {
+            continue;
+        }
         for (number, cell) in trace.moments {
             if !matches!(canvas.at(cell[0], cell[1]), Mark::Moment(_)) {
                 canvas.put(cell, Mark::Moment(number));

@@ -1,6 +1,6 @@
 //! Where a path leads, and where one came from, in one sentence each. Numerical, and said to be.
 
-use super::legend::symbol;
+use super::legend::{at, symbol};
 use super::{Style, View};
 use crate::analysis::field::Window;
 use crate::analysis::paths::{Ended, Path};
@@ -25,7 +25,7 @@ pub fn ends(view: &View<'_>, path: &Path, style: Style) -> String {
                 time => format!("after {} {unit} within 1 % of {id}{leaves}", human(time)),
             }
         }
-        None => still(path, &unit),
+        None => rest(view, path, &unit).unwrap_or_else(|| still(path, &unit)),
     };
     let mut said: Vec<String> = losses(view, path, &unit);
     // A sentence that begins with a symbol keeps it as it is.
@@ -114,6 +114,28 @@ fn stopped(path: &Path) -> Option<&'static str> {
     }
 }
 
+/// The last part of a path, in which one that is at rest does not move; a share of its time.
+const LAST: f64 = 0.1;
+
+/// A path that came to rest where the list has no equilibrium, as where a quota goes on being taken of nobody.
+fn rest(view: &View<'_>, path: &Path, unit: &str) -> Option<String> {
+    let is_map = view.step().is_some();
+    let end = path.states.last().filter(|_| stopped(path).is_none())?;
+    let highest = highest(path, end.len());
+    let is_near = |state: &[f64], share: f64| distance(end, &highest, state) <= share;
+    // Ten times nearer than near, lest a slow path be taken for one at rest.
+    is_near(&path.at((1.0 - LAST) * path.until(), is_map), NEAR / 10.0).then(|| {
+        let time = entry(path, is_map, &|state| is_near(state, NEAR));
+        let place = at(view, view.slice.project(end));
+        format!("after {} {unit} within 1 % of {place}, which is no equilibrium of the list", human(time))
+    })
+}
+
+fn highest(path: &Path, species: usize) -> Vec<f64> {
+    let all = |i: usize| path.states.iter().filter_map(move |state| state.get(i));
+    (0..species).map(|i| all(i).fold(0.0, |high: f64, x| high.max(*x))).collect()
+}
+
 fn still(path: &Path, unit: &str) -> String {
     let after = human(path.until());
     match stopped(path) {
@@ -127,9 +149,7 @@ fn still(path: &Path, unit: &str) -> String {
 /// Near is within 1 % of the abundance of every species, for one that is absent there within 1 % of its highest on the way.
 pub(in crate::report) fn arrival(view: &View<'_>, path: &Path) -> Option<(usize, f64)> {
     let end = path.states.last()?;
-    let highest: Vec<f64> = (0..end.len())
-        .map(|i| path.states.iter().filter_map(|state| state.get(i)).fold(0.0, |high: f64, x| high.max(*x)))
-        .collect();
+    let highest = highest(path, end.len());
     let list = &view.solved.equilibria.list;
     let off = |index: usize, state: &[f64]| distance(&list[index].state, &highest, state);
     let near = (0..list.len()).filter(|&index| off(index, end) <= NEAR);
