@@ -106,7 +106,7 @@ fn a_map_is_predicted_by_powers() {
     let course = course(&model, Some(0), -0.4);
     for (k, (&time, linear)) in course.times.iter().zip(&course.predicted).enumerate() {
         assert_eq!(time, 2.0 * k as f64);
-        assert!((linear[0] - (1.0 - 0.4 * 0.5f64.powi(k as i32))).abs() < 1e-12, "{k}: {linear:?}");
+        assert!((linear[0] - (1.0 - 0.4 * 0.5f64.powf(k as f64))).abs() < 1e-12, "{k}: {linear:?}");
     }
     assert_eq!(course.states[0], [0.6, 1.0]);
     let mut x: f64 = 0.6;
