@@ -58,8 +58,10 @@ pub struct Parts {
     pub numbers: Area,
 }
 
-/// Columns for names and quantities at the left of the lists.
-pub const LABELS: u16 = 16;
+/// Columns for names and quantities at the left of the lists, on a narrow terminal and on a wide one.
+const LABELS: [u16; 2] = [16, 26];
+/// From how many columns on a terminal is wide.
+const WIDE: u16 = 120;
 
 /// The parts of the screen, with so many scenarios and equilibria.
 pub fn parts(size: Size, scenarios: usize, count: usize) -> Parts {
@@ -79,11 +81,16 @@ pub fn parts(size: Size, scenarios: usize, count: usize) -> Parts {
 }
 
 impl Parts {
+    /// Columns for names and quantities at the left of the lists.
+    pub fn labels(&self) -> u16 {
+        LABELS[usize::from(self.list.columns >= WIDE)]
+    }
+
     /// Where a scenario's cells of the lists begin, and how wide they are.
     pub fn cell(&self, column: usize) -> [u16; 2] {
         let count = u16::try_from(self.columns.len().max(1)).unwrap_or(1);
-        let width = self.list.columns.saturating_sub(LABELS) / count;
-        [LABELS + width * u16::try_from(column).unwrap_or(0), width.saturating_sub(1)]
+        let width = self.list.columns.saturating_sub(self.labels()) / count;
+        [self.labels() + width * u16::try_from(column).unwrap_or(0), width.saturating_sub(1)]
     }
 }
 

@@ -3,11 +3,11 @@
 use super::paint::{Page, more};
 use super::sketch::Shown;
 use crate::analysis::equilibria::Equilibrium;
-use crate::app::beside::{LABELS, Parts, compared, ids, parts, shown, task};
+use crate::app::beside::{Parts, compared, ids, parts, shown, task};
 use crate::app::geometry::Area;
 use crate::app::task::Compared;
 use crate::app::{App, Study};
-use crate::report::compare::{Change, Comparison, Entry, Identity, difference};
+use crate::report::compare::{Change, Comparison, Entry, Identity, Measured, difference};
 use crate::report::grid::Ink;
 use crate::report::kinds::{self, SPIRALS};
 use crate::report::table::{Limits, Table, human};
@@ -63,7 +63,7 @@ fn lists(study: &Study, slots: &[usize], comparison: &Comparison<'_>, page: &mut
     for (line, (place, identity)) in shown.enumerate() {
         list_row(comparison, identity, page, parts, line as u16);
         if place == row {
-            page.row(Area { columns: LABELS - 1, ..parts.list }, line as u16, Ink::Chosen);
+            page.row(Area { columns: parts.labels() - 1, ..parts.list }, line as u16, Ink::Chosen);
         }
     }
     let hidden = comparison.rows.len().saturating_sub(study.beside.from + room);
@@ -99,7 +99,7 @@ fn sentence(
 
 /// One equilibrium through all scenarios.
 fn list_row(comparison: &Comparison<'_>, identity: &Identity, page: &mut Page<'_>, parts: &Parts, line: u16) {
-    page.text(Area { columns: LABELS - 1, ..parts.list }, [1, line], &identity.id, Ink::Strong);
+    page.text(Area { columns: parts.labels() - 1, ..parts.list }, [1, line], &identity.id, Ink::Strong);
     for (scene, entry) in identity.entries.iter().enumerate() {
         let [start, width] = parts.cell(scene);
         let cell = Area { x: parts.list.x + start, columns: width, ..parts.list };
@@ -135,48 +135,64 @@ fn abundances(found: &Equilibrium, page: &Page<'_>) -> String {
 
 /// The selected equilibrium's quantities, with how each differs from the first scenario.
 fn numbers(comparison: &Comparison<'_>, chosen: &Identity, page: &mut Page<'_>, parts: &Parts) {
-    let labels = Area { columns: LABELS - 1, ..parts.numbers };
+    let labels = Area { columns: parts.labels() - 1, ..parts.numbers };
     page.text(labels, [0, 0], &format!("{} type", chosen.id), Ink::Faint);
     for (scene, entry) in chosen.entries.iter().enumerate() {
         let (text, ink) = kind(comparison, scene, entry);
         put(page, parts, scene, 0, &text, ink);
     }
-    let mut row = 1;
-    if comparison.rows.iter().flat_map(|row| &row.entries).next().is_some() {
-        let leads: Vec<Option<String>> = (0..chosen.entries.len()).map(|scene| comparison.leads(scene)).collect();
-        if leads.iter().any(Option::is_some) {
-            page.text(labels, [0, row], "today leads to", Ink::Faint);
-            let first = leads.iter().flatten().next().cloned();
-            for (scene, to) in leads.into_iter().enumerate() {
-                let ink = if to == first { Ink::Plain } else { Ink::Changed };
-                put(page, parts, scene, row, &to.unwrap_or_default(), ink);
-            }
+    let mut row = 1 + leads(comparison, page, parts);
+    // Abundances stand in the list already.
+    let is_state = |k: &usize| matches!(comparison.quantities[*k].measured, Measured::State(_));
+    let (states, others): (Vec<usize>, Vec<usize>) = (0..comparison.quantities.len()).partition(is_state);
+    for k in others.into_iter().chain(states) {
+        let values: Vec<Option<f64>> =
+            chosen.entries.iter().map(|entry| entry.values.get(k).copied().flatten()).collect();
+        if row < parts.numbers.rows && values.iter().any(Option::is_some) {
+            quantity(comparison, k, &values, page, parts, row);
             row += 1;
         }
     }
-    for (k, quantity) in comparison.quantities.iter().enumerate() {
-        let values: Vec<Option<f64>> =
-            chosen.entries.iter().map(|entry| entry.values.get(k).copied().flatten()).collect();
-        if values.iter().all(Option::is_none) {
-            continue;
-        }
-        if row >= parts.numbers.rows {
-            return;
-        }
-        let unit = if quantity.unit.is_empty() { String::new() } else { format!(", {}", quantity.unit) };
-        page.text(labels, [0, row], &format!("{}{unit}", quantity.name), Ink::Faint);
-        let base = comparison.reference.and_then(|reference| values.get(reference).copied().flatten());
-        for (scene, value) in values.iter().enumerate() {
-            let Some(value) = *value else { continue };
-            let differs = base.filter(|_| comparison.reference != Some(scene)).map(|base| difference(base, value));
-            let (text, ink) = match differs {
-                None => (human(value), Ink::Plain),
-                Some(same) if same == "=" => (format!("{}  =", human(value)), Ink::Plain),
-                Some(other) => (format!("{}  {other}", human(value)), Ink::Changed),
-            };
-            put(page, parts, scene, row, &text, ink);
-        }
-        row += 1;
+}
+
+/// Where today's stocks lead in each scenario; how many rows that takes.
+fn leads(comparison: &Comparison<'_>, page: &mut Page<'_>, parts: &Parts) -> u16 {
+    let leads: Vec<Option<String>> = (0..parts.columns.len()).map(|scene| comparison.leads(scene)).collect();
+    if leads.iter().all(Option::is_none) {
+        return 0;
+    }
+    page.text(Area { columns: parts.labels() - 1, ..parts.numbers }, [0, 1], "today leads to", Ink::Faint);
+    let base = comparison.reference.and_then(|reference| leads.get(reference).cloned().flatten());
+    for (scene, to) in leads.into_iter().enumerate() {
+        let ink = if to == base { Ink::Plain } else { Ink::Changed };
+        put(page, parts, scene, 1, &to.unwrap_or_default(), ink);
+    }
+    1
+}
+
+/// One quantity of the selected equilibrium in each scenario, and how it differs.
+fn quantity(
+    comparison: &Comparison<'_>,
+    k: usize,
+    values: &[Option<f64>],
+    page: &mut Page<'_>,
+    parts: &Parts,
+    row: u16,
+) {
+    let quantity = &comparison.quantities[k];
+    let unit = if quantity.unit.is_empty() { String::new() } else { format!(", {}", quantity.unit) };
+    let labels = Area { columns: parts.labels() - 1, ..parts.numbers };
+    page.text(labels, [0, row], &format!("{}{unit}", quantity.name), Ink::Faint);
+    let base = comparison.reference.and_then(|reference| values.get(reference).copied().flatten());
+    for (scene, value) in values.iter().enumerate() {
+        let Some(value) = *value else { continue };
+        let differs = base.filter(|_| comparison.reference != Some(scene)).map(|base| difference(base, value));
+        let (text, ink) = match differs {
+            None => (human(value), Ink::Plain),
+            Some(same) if same == "=" => (format!("{}  =", human(value)), Ink::Plain),
+            Some(other) => (format!("{}  {other}", human(value)), Ink::Changed),
+        };
+        put(page, parts, scene, row, &text, ink);
     }
 }
 

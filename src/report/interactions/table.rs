@@ -66,7 +66,8 @@ pub fn text(table: &Interactions, model: &Model, style: Style) -> String {
     let columns = head_width(table, model) + n * COLUMN;
     // Wide enough for the title as well.
     let size = Size { columns: columns.max(title(table, model).width()).max(80), rows: n + ABOVE + BELOW };
-    drawing(table, model, [0, 0], size, style).lines(false).iter().map(|line| format!("{line}\n")).collect()
+    let lines = drawing(table, model, [0, 0], size, style).lines(false).join("\n");
+    format!("{}\n", lines.trim_end())
 }
 
 /// The signs of the table, each with its meaning in a word or two.
@@ -130,17 +131,12 @@ fn title(table: &Interactions, model: &Model) -> String {
     let unit = &model.time_unit.value;
     match (table.effects, &model.time) {
         (Effects::Direct, TimeKind::Continuous) => {
-            format!("Direct effects: on the growth of the row, per {unit}, of one more of the column")
+            format!("Direct effects of the column on the growth of the row, per {unit}")
         }
         (Effects::Direct, TimeKind::Discrete { .. }) => {
-            "Direct effects: on the next state of the row, of one more of the column".to_owned()
+            "Direct effects of the column on the next state of the row".to_owned()
         }
-        (Effects::Net, TimeKind::Continuous) => {
-            format!("Net effects (numerical): lasting answer of the row to one more per {unit} of the column")
-        }
-        (Effects::Net, TimeKind::Discrete { .. }) => {
-            "Net effects (numerical): lasting answer of the row to one more at each step of the column".to_owned()
-        }
+        (Effects::Net, _) => "Net effects, numerical: answer of the row to press on column".to_owned(),
     }
 }
 
