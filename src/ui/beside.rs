@@ -112,6 +112,7 @@ fn list_row(comparison: &Comparison<'_>, identity: &Identity, page: &mut Page<'_
 fn entry_text(comparison: &Comparison<'_>, scene: usize, entry: &Entry, page: &Page<'_>) -> (String, Ink) {
     let (word, ink) = match (entry.change, entry.type_changed) {
         (Change::Lost, _) => return ("lost".to_owned(), Ink::Changed),
+        (Change::OtherName, _) => return ("other name".to_owned(), Ink::Changed),
         (Change::InNeither, _) => return (page.either('·', '.').to_string(), Ink::Faint),
         (Change::Failed, _) => return ("failed".to_owned(), Ink::Warning),
         (Change::Gained, _) => ("gained ", Ink::Changed),

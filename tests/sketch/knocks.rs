@@ -1,8 +1,7 @@
 //! After a knock, and who acts on whom: against closed forms, and at every size.
 #![allow(clippy::unwrap_used, clippy::panic, reason = "a test fails by panicking")]
 
-mod sketch_support;
-
+use crate::sketch_support::{Loaded, linear, loaded, shipped};
 use restpoint::analysis::assess::{Assessment, assess};
 use restpoint::analysis::equilibria::Equilibria;
 use restpoint::analysis::paths::{Ended, Path, follow};
@@ -10,7 +9,6 @@ use restpoint::report::course::{self, Course, horizon, knocked};
 use restpoint::report::grid::{Grid, Ink};
 use restpoint::report::interactions::{self, Effect, Effects, Interactions, Sign, Who, interactions};
 use restpoint::report::sketch::{Size, Style};
-use sketch_support::{Loaded, linear, loaded, shipped};
 use unicode_width::UnicodeWidthStr;
 
 const LOGISTIC: &str = "title: l\ntime: yr\nspecies: {N: {unit: t, upper: 150}, M: {upper: 150}}\n\

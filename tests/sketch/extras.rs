@@ -1,10 +1,9 @@
 //! What is drawn over a sketch, and the drawing as a grid: sizes, selected states, points, paths and the sentences on them.
 #![allow(clippy::unwrap_used, clippy::panic, reason = "a test fails by panicking")]
 
-mod sketch_support;
-
 use std::fs;
 
+use crate::sketch_support::{Loaded, Seen, USUAL, loaded, shipped};
 use restpoint::analysis::field::{LINEAR, Scale, Slice, Window};
 use restpoint::analysis::paths::{Path, follow};
 use restpoint::report::grid::{Grid, Ink};
@@ -13,7 +12,6 @@ use restpoint::report::sketch::{
     signs_used, text,
 };
 use restpoint::report::table::{Page, human, identify};
-use sketch_support::{Loaded, Seen, USUAL, loaded, shipped};
 use unicode_width::UnicodeWidthStr;
 
 const LOGARITHMIC: [Scale; 2] = [Scale::Logarithmic; 2];
