@@ -13,7 +13,7 @@ use restpoint::analysis::subject::Subject;
 use restpoint::model::load::{NoFiles, load};
 use restpoint::model::system::System;
 use restpoint::report::sketch::{Extras, Picture, Plot, Size, Style, View, drawing};
-use restpoint::report::table::{Solved, identify};
+use restpoint::report::table::{Names, Solved};
 
 const COLUMNS: usize = 200;
 const ROWS: usize = 100;
@@ -90,7 +90,7 @@ fn whole(name: &str, yaml: &str, window: Window, scales: [Scale; 2]) {
     let equilibria = all(graph, &problem, &budget);
     let assessment = assess(&mut subject, &equilibria, &|| false);
     let solved = Solved { values: system.plans[0].values.clone(), equilibria, assessment };
-    let ids = identify(&[&solved.equilibria.list]).pop().unwrap_or_default();
+    let ids = Names::alone(solved.equilibria.list.len()).ids.pop().unwrap_or_default();
     let slice = Slice::new(&subject, [0, 1], &solved.equilibria, &solved.assessment);
     let view = View { model: &model, scenario: 0, solved: &solved, ids: &ids, slice: &slice, window, scales };
     let mut other = subject.clone();

@@ -11,7 +11,7 @@ use restpoint::report::sketch::{
     Extras, Picture, Plot, Size, Style, Trace, View, came_from, drawing, ends, fit, place_in_drawing, point_in_drawing,
     signs_used, text,
 };
-use restpoint::report::table::{Page, human, identify};
+use restpoint::report::table::{Names, Page, human};
 use unicode_width::UnicodeWidthStr;
 
 const LOGARITHMIC: [Scale; 2] = [Scale::Logarithmic; 2];
@@ -40,7 +40,7 @@ fn check_grid(grid: &Grid, size: Size, style: Style, what: &str) {
 /// Two paths, drawn over one scenario with all else that can be, at several sizes.
 fn check_model(name: &str, model: &Loaded) {
     let solved = model.solved(0);
-    let ids = identify(&[&solved.equilibria.list]).pop().unwrap();
+    let ids = Names::alone(solved.equilibria.list.len()).ids.pop().unwrap();
     let axes = Slice::axes(&model.model);
     let mut subject = model.subject(0);
     let slice = Slice::new(&subject, axes, &solved.equilibria, &solved.assessment);
