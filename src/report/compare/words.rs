@@ -100,7 +100,7 @@ fn through(comparison: &Comparison<'_>, is_back: bool, fate: &Fate, scene: usize
         }
         Fate::Arrives { at: place, .. } => {
             format!(
-                "{from} it is followed to {}, which has its name by way of the scenarios between",
+                "followed directly between here and {base} it is {}, which has its name by way of other scenarios",
                 id(other, *place)
             )
         }
