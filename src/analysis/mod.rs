@@ -10,6 +10,7 @@ pub mod equilibria;
 pub mod field;
 pub mod linearise;
 pub mod measures;
+pub mod passage;
 pub mod paths;
 pub mod prepare;
 pub mod subject;

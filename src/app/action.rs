@@ -46,6 +46,8 @@ pub enum Action {
     Step(Step),
     /// To the scenario before, or after.
     Scenario(Step),
+    /// Through the numbers of the selected equilibrium.
+    Numbers(Step),
     /// To another screen.
     Show(super::Screen),
     /// What keys there are.

@@ -91,16 +91,52 @@ pub struct Equilibria {
 /// Columns of the list at least and at most; a sketch needs the rest more.
 const LIST: [u16; 2] = [29, 66];
 
+/// Columns of the list beside which a sketch has room enough.
+const AMPLE: u16 = 46;
+
 /// The parts of the screen of equilibria, with so many equilibria to be listed.
 pub fn equilibria(size: Size, count: usize) -> Equilibria {
     let body = frame(size).body;
     let (sentence, rest) = body.top(if size.columns < 120 { 3 } else { 2 });
-    let (left, right) = rest.left((size.columns * 2 / 5).clamp(LIST[0], LIST[1]));
+    let (left, right) =
+        rest.left((size.columns * 2 / 5).clamp(LIST[0], if size.columns < 160 { AMPLE } else { LIST[1] }));
     // A heading above the list, a line where there is more; the numbers get at least half.
     let wanted = u16::try_from(count).unwrap_or(u16::MAX).saturating_add(2);
     let (list, numbers) = left.top(wanted.min(left.rows / 2));
     let sketch = Area { x: right.x + 1, columns: right.columns.saturating_sub(1), ..right };
     Equilibria { sentence, list, numbers, sketch }
+}
+
+/// The parts of the screen where values are tried.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub struct Values {
+    /// What the tried values change, in words.
+    pub sentence: Area,
+    /// The parameters.
+    pub list: Area,
+    /// All about the selected one.
+    pub details: Area,
+    /// The sketch.
+    pub sketch: Area,
+    /// The equilibria, in short.
+    pub found: Area,
+}
+
+/// Columns of the parameters at least and at most.
+const PARAMETERS: [u16; 2] = [29, 84];
+/// Rows for all about the selected parameter.
+const DETAILS: [u16; 2] = [5, 8];
+
+/// The parts of the screen where values are tried, with so many equilibria to be listed.
+pub fn values(size: Size, count: usize) -> Values {
+    let body = frame(size).body;
+    let (sentence, rest) = body.top(if size.columns < 120 { 3 } else { 2 });
+    let (left, right) = rest.left((size.columns * 2 / 5).clamp(PARAMETERS[0], PARAMETERS[1]));
+    let (details, list) = left.bottom((left.rows / 3).clamp(DETAILS[0], DETAILS[1]));
+    let right = Area { x: right.x + 1, columns: right.columns.saturating_sub(1), ..right };
+    let wanted = u16::try_from(count).unwrap_or(u16::MAX).saturating_add(1);
+    let (found, sketch) = right.bottom(wanted.min(right.rows / 3));
+    Values { sentence, list, details, sketch, found }
 }
 
 /// How many entries a list shows below its heading.
@@ -131,13 +167,18 @@ mod tests {
             for rows in [0, 1, 2, 3, 19, 20, 24, 50, 200] {
                 for count in [0, 1, 5, 600] {
                     let size = Size { columns, rows };
-                    let (frame, parts) = (frame(size), equilibria(size, count));
+                    let (frame, parts, values) = (frame(size), equilibria(size, count), values(size, count));
                     let areas = [
                         frame.heading,
                         parts.sentence,
                         parts.list,
                         parts.numbers,
                         parts.sketch,
+                        values.sentence,
+                        values.list,
+                        values.details,
+                        values.sketch,
+                        values.found,
                         frame.status,
                         frame.keys,
                     ];
@@ -145,6 +186,8 @@ mod tests {
                         assert!(area.x + area.columns <= columns.max(area.x) && area.y + area.rows <= rows, "{size:?}");
                     }
                     if !size.is_too_small() {
+                        assert!(values.sketch.columns >= 20 && values.sketch.rows >= 8, "{size:?}: {values:?}");
+                        assert!(listed(values.list) >= 3 && values.details.rows >= 5, "{size:?}: {values:?}");
                         assert!(parts.sketch.columns >= 20 && parts.sketch.rows >= 8, "{size:?}: {parts:?}");
                         assert!(listed(parts.list) >= 1 && parts.numbers.rows >= 5, "{size:?}: {parts:?}");
                     }

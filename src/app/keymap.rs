@@ -88,6 +88,8 @@ pub const BINDINGS: &[Binding] = &[
         "go to the scenario before",
         &[EQUILIBRIA, BESIDE, INTERACTIONS, KNOCK],
     ),
+    bind(&[Key::Char(']')], Action::Numbers(Step::On), "see more of the numbers", &[EQUILIBRIA]),
+    bind(&[Key::Char('[')], Action::Numbers(Step::Back), "see the numbers before", &[EQUILIBRIA]),
     bind(&[Key::Enter], Action::Accept, "open it", &[CHOOSER]),
     bind(&[Key::Char('t')], Action::Type, "type a path", &[CHOOSER]),
     bind(&[Key::Char('e')], Action::Show(Screen::Equilibria), "show the equilibria of a scenario", STUDY),

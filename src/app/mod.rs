@@ -16,6 +16,7 @@ pub mod memory;
 pub mod sketch;
 pub mod study;
 pub mod task;
+pub mod trial;
 mod update;
 pub mod wants;
 

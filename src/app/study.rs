@@ -6,7 +6,7 @@ use super::Source;
 use super::sketch::Sketch;
 use crate::analysis::prepare::Prepared;
 use crate::model::{Model, Original, ParameterId};
-use crate::report::table::{Scene, Solved, identify};
+use crate::report::table::{Names, Scene, Solved};
 
 /// A model ready to be searched. Two of them are the same where their editions are.
 #[derive(Clone, Debug)]
@@ -17,6 +17,8 @@ pub struct World {
     pub original: Original,
     /// Its equations and search box.
     pub prepared: Prepared,
+    /// Parameters set for the whole session, over file and scenario.
+    pub set: Vec<(ParameterId, f64)>,
 }
 
 impl PartialEq for World {
@@ -78,6 +80,8 @@ pub struct Tried {
     pub redo: Vec<TriedSet>,
     /// The edition of the world that it is to be searched in.
     pub edition: u64,
+    /// Whether it is to be looked at as soon as it is ready.
+    pub follow: bool,
 }
 
 /// A model that is open.
@@ -95,13 +99,17 @@ pub struct Study {
     pub current: usize,
     /// The equilibrium that is selected, among those of the slot.
     pub chosen: usize,
+    /// The name of the equilibrium that is to be selected once there are names.
+    pub wanted: Option<String>,
     /// The first equilibrium of the list that is shown.
     pub from: usize,
+    /// The first number of the selected equilibrium that is shown.
+    pub facts_from: usize,
     /// What the sketch shows.
     pub sketch: Sketch,
     /// Values that were tried.
     pub tried: Tried,
-    /// The parameter that is selected where values are tried.
+    /// The parameter that is selected where values are tried, by its place in [`Study::parameters`].
     pub parameter: usize,
     /// The first parameter that is shown.
     pub parameters_from: usize,
@@ -118,7 +126,9 @@ impl Study {
             names: Vec::new(),
             current: 0,
             chosen: 0,
+            wanted: None,
             from: 0,
+            facts_from: 0,
             sketch: Sketch::default(),
             tried: Tried::default(),
             parameter: 0,
@@ -153,7 +163,7 @@ impl Study {
 
     /// How many slots are those of the file's scenarios.
     pub fn of_file(&self) -> usize {
-        self.slots.iter().filter(|slot| slot.scenario < self.model().scenarios.len()).count()
+        self.slots.iter().filter(|slot| slot.world == self.world).count()
     }
 
     /// Whether a slot holds tried values.
@@ -163,13 +173,36 @@ impl Study {
 
     /// Takes what was found in a world's scenario; nothing where nobody asks for it any more.
     pub fn take(&mut self, world: &Arc<World>, scene: Scene) {
-        let chosen = self.name_of_chosen();
         let scenario = scene.scenario;
-        if let Some(slot) = self.slots.iter_mut().find(|slot| slot.world == *world && slot.scenario == scenario) {
-            slot.found = Some((Arc::clone(world), Arc::new(scene)));
+        let is_it = |slot: &Slot| slot.world == *world && slot.scenario == scenario;
+        let Some(place) = self.slots.iter().position(is_it) else { return };
+        if place == self.current {
+            self.wanted = self.name_of_chosen().or(self.wanted.take());
         }
-        self.name_all();
-        self.choose_named(chosen.as_deref());
+        self.slots[place].found = Some((Arc::clone(world), Arc::new(scene)));
+        // Until they are named anew: a name must not be that of another.
+        if let Some(names) = self.names.get_mut(place) {
+            names.clear();
+        }
+    }
+
+    /// Takes the names of what was found in these slots.
+    pub fn name(&mut self, slots: impl IntoIterator<Item = usize>, names: &Names) {
+        self.names.resize(self.slots.len(), Vec::new());
+        for (k, slot) in slots.into_iter().enumerate() {
+            if let Some(place) = self.names.get_mut(slot) {
+                *place = names.of(k).to_vec();
+            }
+        }
+        if let Some(wanted) = self.wanted.take() {
+            self.choose_named(Some(&wanted));
+        }
+    }
+
+    /// The slots whose equilibria can be named together: all that are searched in the world that they belong to.
+    pub fn nameable(&self) -> Vec<usize> {
+        let is_present = |slot: &Slot| slot.world == self.world || slot.world.edition == self.tried.edition;
+        (0..self.slots.len()).filter(|&k| self.slots[k].is_fresh() && is_present(&self.slots[k])).collect()
     }
 
     /// The name of the equilibrium that is selected.
@@ -177,18 +210,16 @@ impl Study {
         self.names(self.current).get(self.chosen).cloned()
     }
 
-    /// Selects the equilibrium of that name in the slot that is looked at; where it has none, the nearest place in the list.
+    /// Selects the equilibrium of that name in the slot that is looked at, as soon as it has names; where none is called so
+    /// the place in the list stays.
     pub fn choose_named(&mut self, name: Option<&str>) {
+        if self.names(self.current).is_empty() {
+            self.wanted = name.map(str::to_owned);
+            return;
+        }
         if let Some(place) = self.names(self.current).iter().position(|other| Some(other.as_str()) == name) {
             self.chosen = place;
         }
         self.chosen = self.chosen.min(self.count().saturating_sub(1));
-    }
-
-    /// Names the equilibria of all slots.
-    pub fn name_all(&mut self) {
-        let list = |slot: &'_ Slot| slot.solved().map_or(Vec::new(), |solved| solved.equilibria.list.clone());
-        let lists: Vec<Vec<_>> = self.slots.iter().map(list).collect();
-        self.names = identify(&lists.iter().map(Vec::as_slice).collect::<Vec<_>>());
     }
 }

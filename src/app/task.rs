@@ -7,13 +7,13 @@ use super::{Read, Source};
 use crate::analysis::field::{Scale, Slice, Window};
 use crate::analysis::paths::Path;
 use crate::report::sketch::{Picture, Plot};
-use crate::report::table::{Scene, Solved};
+use crate::report::table::{Names, Scene, Solved};
 
 /// What takes time. Two tasks that are equal have the same answer.
 #[derive(Clone, Debug, PartialEq)]
 pub enum Task {
-    /// Reads a model and makes it ready; the number tells one reading from another.
-    Read(Source, u64),
+    /// Reads a model and makes it ready, with parameters set by name; the number tells one reading from another.
+    Read(Source, Vec<(String, f64)>, u64),
     /// Makes a model with a tried scenario at its end ready; the number is the edition that it gets.
     Prepare(Arc<World>, TriedSet, u64),
     /// Searches a scenario.
@@ -22,6 +22,15 @@ pub enum Task {
         world: Arc<World>,
         /// Which scenario.
         scenario: usize,
+        /// Seconds that it may take.
+        budget: f64,
+    },
+    /// Names what was found in several scenarios by following it from one to the next.
+    Name {
+        /// A model with all those scenarios.
+        world: Arc<World>,
+        /// What was found, in the order of the scenarios.
+        scenes: Vec<Found>,
         /// Seconds that it may take.
         budget: f64,
     },
@@ -83,6 +92,8 @@ pub enum Answer {
     Prepared(Result<Arc<World>, String>),
     /// Of searching.
     Solved(Box<Scene>),
+    /// Of naming, scenario by scenario.
+    Named(Arc<Names>),
     /// Of painting; nothing where the scenario has no equations.
     Painted(Option<Arc<Picture>>),
     /// Of following.

@@ -17,11 +17,12 @@ use crate::report::table::Solved;
 pub fn wants(app: &App) -> Vec<Task> {
     let mut tasks = Vec::new();
     if let Some((source, edition)) = &app.reading {
-        tasks.push(Task::Read(source.clone(), *edition));
+        tasks.push(Task::Read(source.clone(), app.set.clone(), *edition));
     }
     let Some(study) = &app.study else { return tasks };
     tasks.extend(preparing(study));
     tasks.extend(searches(app, study));
+    tasks.extend(naming(app, study));
     if matches!(app.screen, Screen::Equilibria | Screen::Values) {
         tasks.extend(painting(study, study.current, sketch_size(app, study)).map(Task::Paint));
         tasks.extend(paths(study));
@@ -44,13 +45,26 @@ fn searches<'s>(app: &'s App, study: &'s Study) -> impl Iterator<Item = Task> + 
     order.filter_map(|k| study.slots.get(k)).filter(|slot| !slot.is_fresh()).map(|slot| search(slot, app.budget))
 }
 
+/// Names for all that is found.
+pub(super) fn naming(app: &App, study: &Study) -> Option<Task> {
+    let found = |slot: &Slot| slot.found.as_ref().map(|(_, scene)| Found(Arc::clone(scene)));
+    let slots: Vec<&Slot> = study.nameable().iter().filter_map(|&k| study.slots.get(k)).collect();
+    let scenes: Vec<Found> = slots.iter().filter_map(|slot| found(slot)).collect();
+    // The world of the tried values has the scenarios of the file as well.
+    let world = slots.last().map_or(&study.world, |slot| &slot.world);
+    (!scenes.is_empty()).then(|| Task::Name { world: Arc::clone(world), scenes, budget: app.budget })
+}
+
 fn search(slot: &Slot, budget: f64) -> Task {
     Task::Solve { world: Arc::clone(&slot.world), scenario: slot.scenario, budget }
 }
 
 /// Columns and rows of the sketch on the present screen.
 pub fn sketch_size(app: &App, study: &Study) -> Size {
-    let area = geometry::equilibria(app.size, study.count()).sketch;
+    let area = match app.screen {
+        Screen::Values => geometry::values(app.size, study.count()).sketch,
+        _ => geometry::equilibria(app.size, study.count()).sketch,
+    };
     Size { columns: area.columns.into(), rows: area.rows.into() }
 }
 

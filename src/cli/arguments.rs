@@ -59,6 +59,14 @@ pub(super) enum Command {
         #[command(flatten)]
         show: Show,
     },
+    /// Put scenarios side by side: which equilibria stay, change, are lost and gained
+    #[command(after_help = AFTER_COMPARE)]
+    Compare {
+        /// Model file in YAML, or - for standard input
+        model: PathBuf,
+        #[command(flatten)]
+        work: Work,
+    },
     /// Draw the direction field of each scenario, with its equilibria, in characters
     #[command(
         after_help = "The drawing shows what lies around the equilibria and today's stocks, for all scenarios alike."
@@ -87,6 +95,11 @@ Equilibria are called E1, E2, ... and keep their names in all scenarios of one r
 text, markdown and latex are for people: numbers rounded, columns that are empty left out. csv has one row for each \
 equilibrium of each scenario, json has the most; both have exact numbers. Every format says what is proved, what is \
 numerical and what is undecided, and has what is needed to make the table again.";
+
+const AFTER_COMPARE: &str = "\
+The first scenario is the reference that the others are compared with. Each equilibrium is followed from it to every \
+other scenario on the way between their balances; what is found so is numerical, and --strict does not ask that it be \
+proved.";
 
 /// What is shown of the results.
 #[derive(Debug, Default, Args)]

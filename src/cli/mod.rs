@@ -19,6 +19,7 @@ use crate::shell::{files, terminal};
 mod arguments;
 mod check;
 mod choice;
+mod compare;
 mod interface;
 mod model;
 mod sketch;
@@ -150,6 +151,7 @@ fn perform(arguments: &Arguments, screen: Screen) -> Outcome {
         Some(Command::Table { show, .. }) if show.is_help() => table::columns(options),
         Some(Command::Table { model: None, .. }) => Outcome::only(NO_MODEL.to_owned(), Exit::Usage),
         Some(Command::Table { model, work, show }) => table::table(model.as_deref(), work, show, options, screen),
+        Some(Command::Compare { model, work }) => compare::compare(model, work, options, screen),
         Some(Command::Sketch(asked)) => sketch::sketch(asked, options, screen),
         None if arguments.show.is_help() => table::columns(options),
         None => interface::interface(arguments).unwrap_or_else(|| {

@@ -3,11 +3,10 @@
 use crate::analysis::field::{LINEAR, Slice, Window};
 use crate::analysis::prepare::Prepared;
 use crate::analysis::subject::Subject;
-use crate::diag::Diagnostic;
 use crate::diag::cleanse::cleanse;
 use crate::model::{Model, Original};
 use crate::report::sketch::{Picture, Plot, Size, Style, View, closing, heading, legend_rows, text, window};
-use crate::report::table::{Limits, Page, Scene, Solved, failed, identify};
+use crate::report::table::{Limits, Names, Page, Scene, Solved, failed};
 use crate::shell::models::{Reading, read};
 use crate::shell::signal::Interrupt;
 use crate::shell::solver::BOXES;
@@ -17,7 +16,7 @@ use crate::shell::workers::Threads;
 use super::arguments::{BUDGET, Format, Options, Sketch, Work};
 use super::choice::{self, Choice};
 use super::model::{remarks, wrong};
-use super::solve::Solver;
+use super::solve::{Solver, ended};
 use super::{Exit, Outcome, Screen};
 
 /// Rows below which a drawing is not cut to let its legend fit the terminal as well.
@@ -53,7 +52,15 @@ pub(super) fn sketch(asked: &Sketch, options: &Options, screen: Screen) -> Outco
     let solver = Solver { model, prepared: &prepared, limits, threads, interrupt: &interrupt };
     let scenes: Vec<Scene> = choice.scenarios.iter().map(|&scenario| solver.scene(scenario)).collect();
     let drawer = Drawer { model, prepared: &prepared, axes, size: asked.size, options, screen };
-    present(&drawer.all(&scenes, interrupt.is_raised()), &scenes, &original, asked, screen, interrupt.is_raised())
+    let names = solver.names(&scenes);
+    present(
+        &drawer.all(&scenes, &names, interrupt.is_raised()),
+        &scenes,
+        &original,
+        asked,
+        screen,
+        interrupt.is_raised(),
+    )
 }
 
 fn present(
@@ -64,18 +71,7 @@ fn present(
     screen: Screen,
     interrupted: bool,
 ) -> Outcome {
-    let problems = scenes.iter().filter_map(|scene| scene.outcome.as_ref().err());
-    let failed: Vec<Diagnostic> = problems.flatten().cloned().collect();
-    let is_proved = |scene: &Scene| scene.outcome.as_ref().is_ok_and(Solved::is_proved);
-    let exit = if interrupted {
-        Exit::Interrupted
-    } else if !failed.is_empty() {
-        Exit::Fault
-    } else if *strict && !scenes.iter().all(is_proved) {
-        Exit::Unproved
-    } else {
-        Exit::Done
-    };
+    let (failed, exit) = ended(scenes, interrupted, *strict);
     let remarks = remarks(&failed, &original.model.sources, screen.color_remarks);
     Outcome { result: result.to_owned(), remarks, exit }
 }
@@ -91,21 +87,19 @@ struct Drawer<'d> {
 }
 
 impl Drawer<'_> {
-    fn all(&self, scenes: &[Scene], interrupted: bool) -> String {
+    fn all(&self, scenes: &[Scene], names: &Names, interrupted: bool) -> String {
         let solved: Vec<&Solved> = scenes.iter().filter_map(|scene| scene.outcome.as_ref().ok()).collect();
-        let lists: Vec<&[_]> = solved.iter().map(|solved| &solved.equilibria.list[..]).collect();
         let sides: Vec<[f64; 2]> = self.prepared.bounds.iter().map(|bound| [bound.lower, bound.upper]).collect();
         let window = window(self.model, &self.prepared.bounds, &solved, self.axes);
-        let mut ids = identify(&lists).into_iter();
         let page = self.page();
         let mut out = heading(self.model, page);
         if interrupted {
             out.push_str("INTERRUPTED: the search was broken off; this is a partial result.\n");
         }
-        for scene in scenes {
+        for (place, scene) in scenes.iter().enumerate() {
             out.push('\n');
             out.push_str(&match &scene.outcome {
-                Ok(solved) => self.one(scene, solved, &ids.next().unwrap_or_default(), window, &sides),
+                Ok(solved) => self.one(scene, solved, names.of(place), window, &sides),
                 Err(problems) => failed(self.model, scene, problems, &page),
             });
         }

@@ -3,11 +3,10 @@
 use std::path::Path;
 
 use crate::analysis::prepare::Prepared;
-use crate::diag::Diagnostic;
 use crate::diag::cleanse::cleanse;
 use crate::model::{Model, Original};
 use crate::report::table::{
-    Limits, Page, Scene, Selection, Solved, Style, Table, UnknownColumn, csv, guide, json, latex, markdown, text,
+    Limits, Page, Scene, Selection, Style, Table, UnknownColumn, csv, guide, json, latex, markdown, text,
 };
 use crate::shell::models::{Reading, read};
 use crate::shell::signal::Interrupt;
@@ -17,7 +16,7 @@ use crate::shell::workers::Threads;
 use super::arguments::{BUDGET, Format, Options, Show, Work};
 use super::choice::Choice;
 use super::model::{pretty, remarks, wrong};
-use super::solve::Solver;
+use super::solve::{Solver, ended};
 use super::{Exit, Outcome, Screen};
 
 /// Says what columns there are.
@@ -54,7 +53,9 @@ pub(super) fn table(path: Option<&Path>, work: &Work, show: &Show, options: &Opt
     let threads = work.threads.map_or_else(Threads::available, |count| Threads::new(count.into()));
     let solver = Solver { model, prepared: &prepared, limits, threads, interrupt: &interrupt };
     let scenes: Vec<Scene> = choice.scenarios.iter().map(|&scenario| solver.scene(scenario)).collect();
-    let command = command(path, work, show, options, &choice, model);
+    let names = solver.names(&scenes);
+    let word = path.map(|path| ("table", path));
+    let command = command(word, work, show.columns.as_deref(), options, &choice, model);
     let table = Table {
         model,
         sha256: &original.sha256,
@@ -64,6 +65,7 @@ pub(super) fn table(path: Option<&Path>, work: &Work, show: &Show, options: &Opt
         bounds: &prepared.bounds,
         limits,
         scenes: &scenes,
+        names: &names,
         interrupted: interrupt.is_raised(),
         columns: selection.as_ref(),
     };
@@ -80,18 +82,7 @@ fn present(table: &Table<'_>, original: &Original, work: &Work, options: &Option
         Format::Json => pretty(&json(table), options),
         Format::Latex => latex(table, page),
     };
-    let problems = table.scenes.iter().filter_map(|scene| scene.outcome.as_ref().err());
-    let failed: Vec<Diagnostic> = problems.flatten().cloned().collect();
-    let is_proved = |scene: &Scene| scene.outcome.as_ref().is_ok_and(Solved::is_proved);
-    let exit = if table.interrupted {
-        Exit::Interrupted
-    } else if !failed.is_empty() {
-        Exit::Fault
-    } else if work.strict && !table.scenes.iter().all(is_proved) {
-        Exit::Unproved
-    } else {
-        Exit::Done
-    };
+    let (failed, exit) = ended(table.scenes, table.interrupted, work.strict);
     Outcome { result, remarks: remarks(&failed, &original.model.sources, screen.color_remarks), exit }
 }
 
@@ -103,11 +94,18 @@ fn no_such_column(unknown: &UnknownColumn) -> String {
     format!("error: no column is called \"{}\"{meant}\n", cleanse(&unknown.id))
 }
 
-/// The command that makes the table, without the options that make no difference to it.
-fn command(path: Option<&Path>, work: &Work, show: &Show, options: &Options, choice: &Choice, model: &Model) -> String {
+/// The command that makes what is shown, by its word and model, without the options that make no difference to it.
+pub(super) fn command(
+    what: Option<(&str, &Path)>,
+    work: &Work,
+    columns: Option<&str>,
+    options: &Options,
+    choice: &Choice,
+    model: &Model,
+) -> String {
     let mut words: Vec<String> = vec!["restpoint".to_owned()];
-    if let Some(path) = path {
-        words.extend(["table".to_owned(), quoted(&path.to_string_lossy())]);
+    if let Some((word, path)) = what {
+        words.extend([word.to_owned(), quoted(&path.to_string_lossy())]);
     }
     if !work.scenarios.is_empty() {
         let names = choice.scenarios.iter().filter_map(|&scenario| model.scenarios.get(scenario));
@@ -120,7 +118,7 @@ fn command(path: Option<&Path>, work: &Work, show: &Show, options: &Options, cho
     if let Some(seconds) = work.budget {
         words.extend(["--budget".to_owned(), seconds.to_string()]);
     }
-    if let Some(list) = &show.columns {
+    if let Some(list) = columns {
         words.extend(["--columns".to_owned(), quoted(list)]);
     }
     if options.format != Format::Text {

@@ -1,4 +1,10 @@
-//! Small dense matrices, row by row in a slice.
+//! Dense matrices, row by row in a slice.
+#![expect(clippy::inline_always, reason = "the loops must end up inside the variant compiled for a processor feature")]
+
+use super::wide::{self, Loops};
+
+/// Smaller matrices are done before wider instructions are chosen.
+const WORTH_CHOOSING: usize = 16;
 
 /// The inverse of a matrix of order `n`, by Gauss–Jordan elimination with partial pivoting; an approximation, good enough
 /// to precondition with. `None` where a pivot is 0 or not finite.
@@ -30,13 +36,8 @@ pub fn inverse_unless(entries: &[f64], n: usize, stop: &dyn Fn() -> bool) -> Opt
         a[k * n + k] = 1.0;
         a[k * n..(k + 1) * n].iter_mut().for_each(|x| *x *= scale);
         row.copy_from_slice(&a[k * n..(k + 1) * n]);
-        for (i, other) in a.chunks_exact_mut(n).enumerate() {
-            let factor = other[k];
-            if i != k && factor != 0.0 {
-                other[k] = 0.0;
-                add_multiple(other, -factor, &row);
-            }
-        }
+        let elimination = Elimination { a: &mut a, row: &row, k };
+        if n < WORTH_CHOOSING { elimination.run() } else { wide::execute(elimination) }
     }
     for (k, &pivot) in exchanged.iter().enumerate().rev() {
         if pivot != k {
@@ -44,6 +45,26 @@ pub fn inverse_unless(entries: &[f64], n: usize, stop: &dyn Fn() -> bool) -> Opt
         }
     }
     a.iter().all(|x| x.is_finite()).then_some(a)
+}
+
+/// Takes multiples of the k-th row from all others, such that their k-th entries become those of an inverse.
+struct Elimination<'a> {
+    a: &'a mut [f64],
+    row: &'a [f64],
+    k: usize,
+}
+
+impl Loops for Elimination<'_> {
+    #[inline(always)]
+    fn run(self) {
+        for (i, other) in self.a.chunks_exact_mut(self.row.len()).enumerate() {
+            let factor = other[self.k];
+            if i != self.k && factor != 0.0 {
+                other[self.k] = 0.0;
+                other.iter_mut().zip(self.row).for_each(|(y, x)| *y -= factor * x);
+            }
+        }
+    }
 }
 
 /// A B for two matrices of order `n`.

@@ -5,7 +5,7 @@
 //! The processor's rounding mode is never touched and no fused multiply-add is assumed. Ends of intervals may be infinite:
 //! an infinite argument stands for "unbounded", 0·∞ is 0 (the limit over bounded factors), and overflow steps back to the
 //! largest finite number on the inner side. NaN never comes out unless it goes in. Start at [`add_down`]; whatever is added
-//! here needs an exact oracle in `tests/interval_arithmetic.rs`.
+//! here needs an exact oracle in `tests/numbers/interval_arithmetic.rs`.
 
 /// Steps `x` one f64 down where `inexact`; `x` is neither 0 nor NaN nor −∞.
 ///

@@ -5,17 +5,18 @@
 use std::sync::Arc;
 
 use crate::analysis::equilibria::{Budget, Progress};
+use crate::analysis::passage::Ways;
 use crate::analysis::paths::follow;
 use crate::analysis::prepare::Prepared;
 use crate::app::study::{TriedSet, World};
 use crate::app::task::Painting;
 use crate::app::{Answer, Read, Source, Task};
-use crate::model::Original;
+use crate::model::{Model, Name, Original, ParameterId};
 use crate::report::sketch::{Picture, View};
 
 use super::clock::Deadline;
 use super::models::{COMPILED, Reading, compiled, read};
-use super::solver::{BOXES, scene};
+use super::solver::{BOXES, names, scene};
 use super::workers::Threads;
 
 /// What a task is done with.
@@ -31,7 +32,7 @@ pub struct Means<'m> {
 /// Does a task.
 pub fn perform(task: Task, means: &Means<'_>) -> Answer {
     match task {
-        Task::Read(source, edition) => Answer::Read(read_source(&source, edition)),
+        Task::Read(source, set, edition) => Answer::Read(read_source(&source, &set, edition)),
         Task::Prepare(world, tried, edition) => Answer::Prepared(prepare(&world, &tried, edition)),
         Task::Solve { world, scenario, budget } => {
             let deadline = Deadline::after(budget);
@@ -43,6 +44,12 @@ pub fn perform(task: Task, means: &Means<'_>) -> Answer {
             };
             Answer::Solved(Box::new(scene(&world.original.model, &world.prepared, scenario, &budget)))
         }
+        Task::Name { world, scenes, budget } => {
+            let deadline = Deadline::after(budget);
+            let mut ways = Ways::new(&world.original.model, &world.prepared);
+            let scenes = scenes.iter().map(|found| &*found.0);
+            Answer::Named(Arc::new(names(&mut ways, scenes, &|| (means.stop)() || deadline.is_past())))
+        }
         Task::Paint(painting) => Answer::Painted(paint(&painting)),
         Task::Follow { world, scenario, start, until } => {
             let subject = world.prepared.subject(&world.original.model, scenario).ok();
@@ -51,7 +58,7 @@ pub fn perform(task: Task, means: &Means<'_>) -> Answer {
     }
 }
 
-fn read_source(source: &Source, edition: u64) -> Read {
+fn read_source(source: &Source, set: &[(String, f64)], edition: u64) -> Read {
     let reading = match source {
         Source::File(path) => read(Some(path)),
         Source::Compiled(index) => match COMPILED.get(*index) {
@@ -60,24 +67,41 @@ fn read_source(source: &Source, edition: u64) -> Read {
         },
     };
     match reading {
-        Reading::Model(original) => match Prepared::new(&original.model, &[]) {
-            Ok(prepared) => Read::Ready(Arc::new(World { edition, original: *original, prepared })),
-            Err(found) => Read::Wrong(original.model.sources.clone(), found),
-        },
+        Reading::Model(original) => {
+            let set = known(&original.model, set);
+            match Prepared::new(&original.model, &set) {
+                Ok(prepared) => Read::Ready(Arc::new(World { edition, original: *original, prepared, set })),
+                Err(found) => Read::Wrong(original.model.sources.clone(), found),
+            }
+        }
         Reading::Wrong(sources, found) => Read::Wrong(sources, found),
         Reading::Unreadable(reason) => Read::Unreadable(reason),
     }
+}
+
+/// The parameters of those names. Another model than the one that they were given for may lack some; the state says so.
+fn known(model: &Model, set: &[(String, f64)]) -> Vec<(ParameterId, f64)> {
+    let find = |name: &str| match model.names.get(name) {
+        Some(Name::Parameter(id)) => Some(*id),
+        _ => None,
+    };
+    let allowed = |id: ParameterId, value| model.parameters.get(id.0).is_some_and(|one| one.ruled_out(value).is_none());
+    let found = set.iter().filter_map(|(name, value)| Some((find(name)?, *value)));
+    found.filter(|&(id, value)| allowed(id, value)).collect()
 }
 
 /// The model with the tried scenario at its end, in the search box of the file.
 fn prepare(world: &World, tried: &TriedSet, edition: u64) -> Result<Arc<World>, String> {
     let Original { model, sha256, tables } = &world.original;
     let model = model.with_values_over(tried.base, &tried.values);
-    match Prepared::new(&model, &[]) {
+    // What is tried goes over what is set for the session, as everything does that comes later.
+    let is_tried = |id: ParameterId| tried.values.iter().any(|(other, _)| *other == id);
+    let set: Vec<_> = world.set.iter().filter(|(id, _)| !is_tried(*id)).copied().collect();
+    match Prepared::new(&model, &set) {
         Ok(mut prepared) => {
             prepared.bounds.clone_from(&world.prepared.bounds);
             let original = Original { model, sha256: sha256.clone(), tables: tables.clone() };
-            Ok(Arc::new(World { edition, original, prepared }))
+            Ok(Arc::new(World { edition, original, prepared, set }))
         }
         Err(found) => Err(found.first().map_or_else(String::new, |problem| problem.message.clone())),
     }

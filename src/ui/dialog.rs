@@ -3,29 +3,61 @@
 use unicode_width::UnicodeWidthStr;
 
 use super::paint::{Page, wrapped};
-use crate::app::geometry::Area;
-use crate::app::keymap::of;
-use crate::app::{App, Entry, Purpose};
+use super::sketch::Shown;
+use crate::app::geometry::{Area, equilibria};
+use crate::app::keymap::{of, place};
+use crate::app::{App, Entry, Purpose, Screen};
 use crate::report::grid::Ink;
 
 /// Columns for the keys.
 const KEYS: u16 = 18;
 
-/// Every key of the screen below, from the table that binds them.
+/// Every key of the screen below, from the table that binds them, and the signs that the sketch has.
 pub(super) fn help(app: &App, page: &mut Page<'_>, area: Area, from: usize) {
-    let below = crate::app::keymap::place(&App { dialog: None, ..app.clone() });
-    let lines: Vec<(String, String)> = of(below)
+    let below = App { dialog: None, ..app.clone() };
+    let mut lines: Vec<(String, String)> = of(place(&below))
         .map(|binding| {
             let keys: Vec<String> = binding.keys.iter().map(|key| key.name()).collect();
             (keys.join(" or "), binding.help.to_owned())
         })
         .collect();
-    page.text(area, [0, 0], "Keys here", Ink::Strong);
+    let signs = signs(&below, page);
+    if !signs.is_empty() {
+        lines.push((String::new(), String::new()));
+        lines.extend(signs);
+    }
+    page.text(area, [0, 0], "Keys and signs here", Ink::Strong);
     let (_, list) = area.top(1);
-    let from = from.min(lines.len().saturating_sub(list.rows.into()));
+    let from = scrolled(from, lines.len(), list);
     for (row, (keys, help)) in lines.iter().skip(from).take(list.rows.into()).enumerate() {
-        page.text(list, [0, row as u16], keys, Ink::Strong);
-        page.text(list, [KEYS, row as u16], help, Ink::Plain);
+        let after = page.text(list, [0, row as u16], keys, Ink::Strong);
+        page.text(list, [KEYS.max(after + 2), row as u16], help, Ink::Plain);
+    }
+    rest(page, area, from, lines.len(), list);
+}
+
+/// The signs of the sketch that is below, with their meanings.
+fn signs(app: &App, page: &Page<'_>) -> Vec<(String, String)> {
+    let Some(study) = app.study.as_ref().filter(|_| has_sketch(app.screen)) else { return Vec::new() };
+    let area = equilibria(app.size, study.count()).sketch;
+    Shown::new(app, study, study.current, area).map_or_else(Vec::new, |shown| shown.signs(page))
+}
+
+fn has_sketch(screen: Screen) -> bool {
+    matches!(screen, Screen::Equilibria | Screen::SideBySide | Screen::Values)
+}
+
+/// As many lines as can be passed without leaving the page empty.
+fn scrolled(from: usize, lines: usize, list: Area) -> usize {
+    from.min(lines.saturating_sub(list.rows.into()))
+}
+
+/// At the end of the heading: how much more there is.
+fn rest(page: &mut Page<'_>, area: Area, from: usize, lines: usize, list: Area) {
+    let below = lines.saturating_sub(from + usize::from(list.rows));
+    if from > 0 || below > 0 {
+        let text = format!("{from} lines above, {below} below");
+        page.text(area, [area.columns.saturating_sub(text.len() as u16), 0], &text, Ink::Faint);
     }
 }
 
@@ -33,10 +65,12 @@ pub(super) fn help(app: &App, page: &mut Page<'_>, area: Area, from: usize) {
 pub(super) fn message(page: &mut Page<'_>, area: Area, title: &str, lines: &[String], from: usize) {
     page.text(area, [0, 0], title, Ink::Warning);
     let (_, list) = area.top(2);
-    let from = from.min(lines.len().saturating_sub(list.rows.into()));
+    let from = scrolled(from, lines.len(), list);
     for (row, line) in lines.iter().skip(from).take(list.rows.into()).enumerate() {
         page.text(list, [0, row as u16], line, Ink::Plain);
     }
+    let (head, _) = area.top(2);
+    rest(page, Area { y: head.y + 1, ..head }, from, lines.len(), list);
 }
 
 /// A line to type in, above the status.

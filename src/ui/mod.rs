@@ -1,6 +1,6 @@
 //! The screens, drawn: a pure function of the state into a buffer of cells. Nothing here changes anything.
 //!
-//! [`view`] is the way in; `page` has what all screens share (heading, status, keys), `paint` writes texts and grids and
+//! [`view`] is the way in, [`text()`] the same as text; `page` has what all screens share (heading, status, keys), `paint` writes texts and grids and
 //! knows what an ink looks like, and each screen has a file of its own. To add a screen: its file, its arm in [`view`].
 
 mod chooser;
@@ -9,6 +9,7 @@ mod equilibria;
 mod page;
 mod paint;
 mod sketch;
+mod text;
 mod values;
 
 use ratatui::buffer::Buffer;
@@ -16,6 +17,8 @@ use ratatui::buffer::Buffer;
 use crate::app::geometry::{Area, frame};
 use crate::app::{App, Dialog, Screen};
 use paint::Page;
+
+pub use text::text;
 
 /// Draws the state; the buffer is as large as the terminal, and blank.
 pub fn view(app: &App, buffer: &mut Buffer) {

@@ -68,14 +68,6 @@ impl<'b> Page<'b> {
         self.text(area, [0, row], &line, Ink::Faint);
     }
 
-    /// A column of an area in one character.
-    pub(super) fn upright(&mut self, area: Area, column: u16) {
-        let line = self.either('│', '|').to_string();
-        for row in 0..area.rows {
-            self.text(area, [column, row], &line, Ink::Faint);
-        }
-    }
-
     /// Blanks in all of an area.
     pub(super) fn clear(&mut self, area: Area) {
         let blanks = " ".repeat(area.columns.into());

@@ -7,7 +7,7 @@ use crate::app::task::{Answer, Painting, Task};
 use crate::app::wants::{painting, path};
 use crate::app::{App, Study};
 use crate::report::grid::Ink;
-use crate::report::sketch::{Extras, Size, View, came_from, drawing, ends};
+use crate::report::sketch::{Extras, Picture, Size, View, came_from, drawing, ends, signs_used};
 
 /// What is drawn of a slot, as far as it is known.
 pub(super) struct Shown<'s> {
@@ -46,21 +46,39 @@ impl<'s> Shown<'s> {
         }
     }
 
-    /// Draws it; says that it is under way where it is.
-    pub(super) fn draw(&self, page: &mut Page<'_>, area: Area) {
-        let Some(Answer::Painted(Some(picture))) = self.app.desk.known(&Task::Paint(self.painting.clone())) else {
-            page.text(area, [8, area.rows / 2], "drawing", Ink::Faint);
-            return;
-        };
-        let Some(view) = self.view() else { return };
+    /// What is drawn over the picture.
+    fn extras(&self) -> Extras<'_> {
         let is_current = self.slot == self.study.current;
-        let extras = Extras {
+        Extras {
             chosen: is_current.then_some(self.study.chosen),
             point: self.study.sketch.point,
             forwards: self.path(false),
             backwards: self.path(true).filter(|_| self.study.sketch.backwards),
+        }
+    }
+
+    fn picture(&self) -> Option<&Picture> {
+        match self.app.desk.known(&Task::Paint(self.painting.clone()))? {
+            Answer::Painted(picture) => picture.as_deref(),
+            _ => None,
+        }
+    }
+
+    /// The signs that are in it, with their meanings.
+    pub(super) fn signs(&self, page: &Page<'_>) -> Vec<(String, String)> {
+        match (self.view(), self.picture()) {
+            (Some(view), Some(picture)) => signs_used(&view, picture, &self.extras(), page.style),
+            _ => Vec::new(),
+        }
+    }
+
+    /// Draws it; says that it is under way where it is.
+    pub(super) fn draw(&self, page: &mut Page<'_>, area: Area) {
+        let (Some(view), Some(picture)) = (self.view(), self.picture()) else {
+            page.text(area, [8, area.rows / 2], "drawing", Ink::Faint);
+            return;
         };
-        page.grid(area, &drawing(&view, picture, &extras, self.size, page.style));
+        page.grid(area, &drawing(&view, picture, &self.extras(), self.size, page.style));
     }
 
     /// Where the paths from the point lead and come from, in words; empty where there is no point.

@@ -6,7 +6,7 @@
 //! put where we want them, `folds` pairs about to merge and merged ones, `continua` lines and planes, `patches`
 //! communities with all 3ⁿ roots, `webs` random food webs without known roots, `textbook` small models of ecology.
 //! [`scaled`] changes the units of any of them, [`widened`] the search box. [`examples`] has one or more of each, under distinct names. To add one:
-//! write it in the sibling that fits, add it to [`examples`], and the tests of `tests/families.rs` hold it to its word.
+//! write it in the sibling that fits, add it to [`examples`], and the tests of `tests/equilibria/families.rs` hold it to its word.
 
 use super::Source;
 use super::text::{ModelText, Point};

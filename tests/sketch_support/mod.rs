@@ -17,7 +17,7 @@ use restpoint::model::system::System;
 use restpoint::model::system::bounds::Bound;
 use restpoint::num::eigen::{Spectrum, Vectors};
 use restpoint::report::sketch::{Canvas, Extras, Picture, Plot, Size, Style, View, draw, fit, text};
-use restpoint::report::table::{Page, Solved, identify};
+use restpoint::report::table::{Names, Page, Solved};
 
 /// A model with its equations.
 pub struct Loaded {
@@ -65,14 +65,15 @@ impl Loaded {
     /// Everything that a sketch of a scenario is made of, handed to `use_it`.
     pub fn with<T>(&self, seen: Seen, use_it: impl Fn(&View<'_>, &Picture) -> T) -> T {
         let solved = self.solved(seen.scenario);
-        let ids = identify(&[&solved.equilibria.list]).pop().unwrap();
+        let names = Names::alone(solved.equilibria.list.len());
+        let ids = names.of(0);
         let axes = seen.axes.unwrap_or_else(|| Slice::axes(&self.model));
         let mut subject = self.subject(seen.scenario);
         let slice = Slice::new(&subject, axes, &solved.equilibria, &solved.assessment);
         let scales = seen.scales;
         let window = seen.window.unwrap_or_else(|| fit(&self.model, &self.bounds, &[&solved], axes, scales));
         let scenario = seen.scenario;
-        let view = View { model: &self.model, scenario, solved: &solved, ids: &ids, slice: &slice, window, scales };
+        let view = View { model: &self.model, scenario, solved: &solved, ids, slice: &slice, window, scales };
         let picture = Picture::new(&mut subject, &view, &Plot::of(seen.size));
         use_it(&view, &picture)
     }

@@ -14,10 +14,55 @@ use restpoint::model::system::bounds::Bound;
 use restpoint::model::{Model, ParameterId, SpeciesId};
 use restpoint::num::eigen::Spectrum;
 use restpoint::num::interval::Interval;
-use restpoint::report::table::{Limits, Scene, Selection, Solved, Table};
+use restpoint::report::table::{Limits, Names, Scene, Selection, Solved, Table};
 
 /// A stand-in for the hash of a file.
 pub const SHA256: &str = "00112233445566778899aabbccddeeff00112233445566778899aabbccddeeff";
+
+/// The keys of a scenario in JSON, in the contract's order.
+pub const SCENARIO_KEYS: [&str; 6] = ["name", "parameters", "search", "from_now", "equilibria", "overlay"];
+
+/// The keys of an equilibrium in JSON, in the contract's order; then ours.
+pub const EQUILIBRIUM_KEYS: [&str; 33] = [
+    "id",
+    "state",
+    "present",
+    "proven",
+    "radius",
+    "eigenvalues",
+    "type",
+    "type_proven",
+    "stable",
+    "stable_proven",
+    "dimensions",
+    "alternating",
+    "nonlinear",
+    "resilience",
+    "return_time",
+    "period",
+    "damping_ratio",
+    "reactivity",
+    "reactivity_proportional",
+    "peak_amplification",
+    "invasion",
+    "settles",
+    "yield",
+    "value",
+    "net_effects",
+    "elasticities",
+    "covariance",
+    "why",
+    "reactivity_present",
+    "peak_amplification_present",
+    "invariability",
+    "populations",
+    "net_effects_condition",
+];
+
+/// [`EQUILIBRIUM_KEYS`] but for `why`, which only stands where something has no derivative.
+pub fn keys_without_reason() -> Vec<&'static str> {
+    EQUILIBRIUM_KEYS.into_iter().filter(|key| *key != "why").collect()
+}
 
 const TWO_STOCKS: &str = "\
 title: Two stocks, größer | and = with 'odd' names
@@ -205,6 +250,12 @@ pub fn scenes(model: &Model) -> Vec<Scene> {
     vec![scene(0, Ok(present_fleet(model))), scene(1, Ok(half_the_effort(model))), scene(2, Err(vec![problem]))]
 }
 
+/// Names of all equilibria, those of the second scenario out of order.
+pub fn names() -> Names {
+    let ids = |numbers: &[usize]| numbers.iter().map(|number| format!("E{number}")).collect();
+    Names { ids: vec![ids(&[1, 2]), ids(&[1, 3, 2, 4]), Vec::new()], unfollowed: Vec::new() }
+}
+
 /// Uses the table of a model, with the columns asked for.
 pub fn with_table_of<T>(model: &Model, columns: Option<&str>, use_it: impl Fn(&Table<'_>) -> T) -> T {
     let scenes = scenes(model);
@@ -219,6 +270,7 @@ pub fn with_table_of<T>(model: &Model, columns: Option<&str>, use_it: impl Fn(&T
         bounds: &[side(1500.0, false), side(400.25, true)],
         limits: Limits { seconds: 10.0, boxes: 50_000 },
         scenes: &scenes,
+        names: &names(),
         interrupted: true,
         columns: selection.as_ref(),
     })

@@ -16,6 +16,9 @@ const STEPS: usize = 1000;
 /// Error of a step, in cells.
 const ERROR: f64 = 1e-3;
 
+/// And at most, as a share of the region: cells may be wider than all that happens.
+const COARSEST: f64 = 1e-7;
+
 /// The error of a step that rounding still lets us see, relative.
 const FINEST: f64 = 1e-13;
 
@@ -28,14 +31,20 @@ const NEAR: f64 = 1e-4;
 /// How near, in columns, a path comes to an equilibrium that it is said to have reached.
 const REACHED: f64 = 0.5;
 
+/// Where an equilibrium is itself within columns of the saddle, this share of the way counts instead.
+const CLOSE: f64 = 0.1;
+
 /// How near it comes, in shares of the region, where the window shows so little that a column is nearer.
 const ARRIVED: f64 = 1e-9;
 
+/// A path that comes back to its own saddle, to within this share of the farthest that it was, has closed its loop.
+const CLOSED: f64 = 0.01;
+
 /// Points of a line are no further apart than this, in columns.
-const SPACING: f64 = 0.5;
+const SPACING: f64 = 0.25;
 
 /// Halvings of a step until its points are near enough.
-const HALVINGS: u32 = 24;
+const HALVINGS: u32 = 48;
 
 /// Points of one branch in the window.
 const MOST_POINTS: usize = 20_000;
@@ -66,7 +75,7 @@ impl Plane<'_> {
         let Ok(mut stepper) = Stepper::new(&mut field, &start, &self.tolerance(start), 1.0) else {
             return seen.lines;
         };
-        let mut from = start;
+        let (mut from, mut farthest) = (start, 0.0f64);
         for _ in 0..STEPS {
             stepper.set_tolerance(&self.tolerance(from));
             if stepper.step(&mut field).is_err() {
@@ -75,7 +84,9 @@ impl Plane<'_> {
             let to = [stepper.state()[0], stepper.state()[1]];
             let dense = stepper.dense();
             seen.stretch(from, to, &|share| [dense.coordinate(0, share), dense.coordinate(1, share)], 0);
-            if !self.is_of_interest(to) || seen.left == 0 {
+            let away = self.frame.apart(saddle, to);
+            farthest = farthest.max(away);
+            if !self.is_of_interest(saddle, to) || seen.left == 0 || away < CLOSED * farthest {
                 break;
             }
             from = to;
@@ -106,17 +117,18 @@ impl Plane<'_> {
                 Scale::Logarithmic => point[i].clamp(low, high) * elementary::ln(high / low) / steps,
             };
             let finest = (FINEST * point[i].abs()).max(f64::MIN_POSITIVE);
-            let absolute = ERROR * cell;
+            let absolute = (ERROR * cell).min(COARSEST * (self.region[i][1] - self.region[i][0]));
             Tolerance { absolute: if absolute > finest { absolute } else { finest }, relative: 0.0 }
         })
     }
 
-    fn is_of_interest(&self, point: [f64; 2]) -> bool {
+    fn is_of_interest(&self, saddle: [f64; 2], point: [f64; 2]) -> bool {
         let is_in = |i: usize| (self.region[i][0]..=self.region[i][1]).contains(&point[i]);
         let size = |i: usize| self.region[i][1] - self.region[i][0];
         let has_reached = |other: &[f64; 2]| {
             let is_there = |i: usize| (point[i] - other[i]).abs() <= ARRIVED * size(i);
-            self.frame.apart(point, *other) < REACHED || (is_there(0) && is_there(1))
+            let reached = REACHED.min(CLOSE * self.frame.apart(saddle, *other));
+            self.frame.apart(point, *other) < reached || (is_there(0) && is_there(1))
         };
         is_in(0) && is_in(1) && !self.others.iter().any(has_reached)
     }

@@ -18,12 +18,17 @@ impl Window {
         (self.x[0]..=self.x[1]).contains(&x) && (self.y[0]..=self.y[1]).contains(&y)
     }
 
-    /// Whether a line between two points may come into it, if it bends by less than the points are apart.
+    /// Whether a line between two points may come into it, if it bends aside by less than the points are apart, in widths
+    /// and heights of the window.
     pub fn may_touch(&self, from: [f64; 2], to: [f64; 2]) -> bool {
         let window = [self.x, self.y];
+        let size = |i: usize| window[i][1] - window[i][0];
+        let share = |i: usize| (to[i] - from[i]).abs() / size(i);
+        let apart = share(0).max(share(1));
         (0..2).all(|i| {
-            let room = (to[i] - from[i]).abs();
-            from[i].min(to[i]) - room <= window[i][1] && from[i].max(to[i]) + room >= window[i][0]
+            let room = apart * size(i);
+            // Not a number where the window has no width; then nothing is ruled out.
+            !(from[i].min(to[i]) - room > window[i][1] || from[i].max(to[i]) + room < window[i][0])
         })
     }
 }

@@ -36,13 +36,16 @@ pub(super) struct Linear<'l> {
     /// Of the f64 numbers, by which what is exactly equal is; empty where nothing is known.
     pub(super) exact: &'l [Interval],
     pub(super) spectrum: &'l Spectrum,
+    /// What each eigenvalue may be off by, where that is known without vectors.
+    pub(super) errors: Option<Vec<f64>>,
     pub(super) proof: &'l Proof,
     pub(super) border: Border,
 }
 
 impl Linear<'_> {
     pub(super) fn class(&self) -> Class {
-        let errors = critical::errors(self.numbers, self.enclosure, self.spectrum);
+        let found = || critical::errors(self.numbers, self.enclosure, self.spectrum);
+        let errors = self.errors.as_ref().map_or_else(found, Vec::clone);
         let sides = critical::sides(self.spectrum, &errors, self.proof, self.border);
         let count = |side| sides.iter().filter(|&&s| s == side).count();
         let dimensions =

@@ -20,15 +20,12 @@ const BALANCINGS: usize = 4;
 /// A defective eigenvalue has no such bound; none is taken larger than the square root that a double one has.
 pub(super) fn errors(numbers: &[f64], enclosure: &[Interval], spectrum: &Spectrum) -> Vec<f64> {
     let n = spectrum.values.len();
-    let scale = balanced(numbers, n);
-    let size = |i: usize, j: usize| numbers[i * n + j].abs() * scale[j] / scale[i];
-    let largest = (0..n * n).map(|k| size(k / n, k % n)).fold(0.0, f64::max);
-    let rounding = BACKWARD * n as f64 * f64::EPSILON;
     // Of the model as written, of which the numbers need not be the middle.
     let radius = |k: usize| enclosure.get(k).map_or(0.0, |&entry| (entry - Interval::point(numbers[k])).mag());
+    let scale = balanced(numbers, n);
+    let rounding = Rounding::new(numbers, &scale);
     let uncertain = (0..n * n).map(|k| radius(k) * scale[k % n] / scale[k / n]).fold(0.0, f64::max);
-    // The roots apart, for their product may overflow.
-    let most = (n as f64 * (rounding * largest + uncertain)).sqrt() * largest.sqrt();
+    let most = rounding.most(uncertain);
     let error = |k: usize| {
         let Some(vectors) = &spectrum.vectors else { return most };
         let size = |of: &[Complex<f64>], i: usize| modulus(of[i * n + k]);
@@ -38,11 +35,35 @@ pub(super) fn errors(numbers: &[f64], enclosure: &[Interval], spectrum: &Spectru
         let through = |i: usize| -> f64 { (0..n).map(|j| radius(i * n + j) * size(&vectors.right, j)).sum() };
         let spread: f64 =
             if enclosure.is_empty() { 0.0 } else { (0..n).map(|i| size(&vectors.left, i) * through(i)).sum() };
-        let bound = vectors.condition[k] * (spread + rounding * largest * (left * right));
+        let bound = vectors.condition[k] * (spread + rounding.share * rounding.largest * (left * right));
         // An infinite condition may have met a sum of 0.
         if bound.is_nan() { most } else { bound.min(most) }
     };
     (0..n).map(error).collect()
+}
+
+/// What rounding does to a balanced matrix.
+pub(super) struct Rounding {
+    n: usize,
+    /// The largest entry.
+    pub(super) largest: f64,
+    /// Of it, what all entries together may be off.
+    pub(super) share: f64,
+}
+
+impl Rounding {
+    pub(super) fn new(numbers: &[f64], scale: &[f64]) -> Self {
+        let n = scale.len();
+        let size = |k: usize| numbers[k].abs() * scale[k % n] / scale[k / n];
+        Self { n, largest: (0..n * n).map(size).fold(0.0, f64::max), share: BACKWARD * n as f64 * f64::EPSILON }
+    }
+
+    /// What no eigenvalue is taken to be off by more than: the square root that a double one has, for entries that are
+    /// `uncertain` besides.
+    pub(super) fn most(&self, uncertain: f64) -> f64 {
+        // The roots apart, for their product may overflow.
+        (self.n as f64 * (self.share * self.largest + uncertain)).sqrt() * self.largest.sqrt()
+    }
 }
 
 /// |z|, the slow way only where squares may be too small.
@@ -52,7 +73,7 @@ fn modulus(z: Complex<f64>) -> f64 {
 }
 
 /// Sizes of the species by which rows and columns come to like norms (Parlett & Reinsch 1969), powers of two.
-fn balanced(numbers: &[f64], n: usize) -> Vec<f64> {
+pub(super) fn balanced(numbers: &[f64], n: usize) -> Vec<f64> {
     let mut scale = vec![1.0f64; n];
     for _ in 0..BALANCINGS {
         for i in 0..n {

@@ -3,10 +3,12 @@
 //!
 //! The words here are the contract's. [`Kind`] and [`Linearisation::stable`] speak of the linear part alone;
 //! [`Nonlinear`] answers where an eigenvalue is critical: real part 0, for a map modulus 1. Start at [`Lineariser`].
-//! `jacobian` evaluates, `written` does so for the numbers as the file has them, `proof` (on `planar` and `place`) says what holds for every Jacobian between the bounds, `critical`
-//! how much a computed eigenvalue may be off, `classify` makes words of both, `nonlinear` looks at the higher terms.
+//! `jacobian` evaluates, `written` does so for the numbers as the file has them, `proof` (on `planar` and `place`) says what holds for every Jacobian between the bounds, `critical` how
+//! much a computed eigenvalue may be off (`clear` where large communities need few vectors for it), `classify` makes words of
+//! both, `nonlinear` looks at the higher terms.
 
 mod classify;
+mod clear;
 mod critical;
 mod jacobian;
 mod nonlinear;
@@ -19,7 +21,7 @@ use nalgebra::Complex;
 
 use super::equilibria::{Derivative, Equilibrium};
 use super::subject::Subject;
-use crate::num::eigen::{Spectrum, Unsolved, spectrum};
+use crate::num::eigen::{Spectrum, Unsolved, eigenvalues, spectrum};
 use crate::num::interval::Interval;
 use classify::Linear;
 use jacobian::Rows;
@@ -116,7 +118,8 @@ pub struct Linearisation {
     pub jacobian: Vec<f64>,
     /// Holds the Jacobian at the equilibrium itself; row by row. Empty for communities too large to prove anything of.
     pub enclosure: Vec<Interval>,
-    /// Eigenvalues in the contract's order, and their vectors.
+    /// Eigenvalues in the contract's order, and their vectors; without these for large communities to which all deviations
+    /// return, unless at most two species are present.
     pub spectrum: Spectrum,
     /// The type.
     pub kind: Kind,
@@ -142,6 +145,10 @@ pub enum Unavailable {
     /// The eigenvalues could not be computed.
     Eigenvalues(Unsolved),
 }
+
+/// Up to this order elasticities of the leading eigenvalue are found, which need its vectors; and all bounds of entries are
+/// of smaller ones.
+const ALWAYS_WITH_VECTORS: usize = 100;
 
 /// One scenario's equations, compiled once for all of its equilibria.
 #[derive(Clone, Debug)]
@@ -178,7 +185,7 @@ impl Lineariser {
             self.rows.numbers(&equilibrium.state)
         };
         let n = equilibrium.state.len();
-        let spectrum = self.ordered(spectrum(&jacobian, n).map_err(Unavailable::Eigenvalues)?);
+        let (spectrum, errors) = self.spectrum(&jacobian, equilibrium).map_err(Unavailable::Eigenvalues)?;
         let exact = if equilibrium.proven { &enclosure[..] } else { &[] };
         let written = if exact.is_empty() { None } else { self.rows.as_written(equilibrium) };
         let proof = written
@@ -189,6 +196,7 @@ impl Lineariser {
             enclosure: written.as_ref().map_or(exact, |written| &written.jacobian),
             exact,
             spectrum: &spectrum,
+            errors,
             proof: &proof,
             border: self.border,
         };
@@ -217,6 +225,22 @@ impl Lineariser {
             enclosure,
             spectrum,
         })
+    }
+
+    /// In the contract's order, and what each eigenvalue may be off by where vectors were left out.
+    ///
+    /// Vectors cost more than values, and in a large community only three things ask for them: how much an eigenvalue near
+    /// the border is off, where paths go beside an unstable state, and straight paths in the plane of a sketch.
+    fn spectrum(&self, jacobian: &[f64], equilibrium: &Equilibrium) -> Result<(Spectrum, Option<Vec<f64>>), Unsolved> {
+        let n = equilibrium.state.len();
+        let crowded = || (0..n).filter(|&i| equilibrium.has(i)).nth(2).is_some();
+        if n > ALWAYS_WITH_VECTORS && crowded() {
+            let alone = self.ordered(Spectrum { values: eigenvalues(jacobian, n)?, vectors: None });
+            if let Some(errors) = clear::errors(jacobian, &alone.values, self.border) {
+                return Ok((alone, Some(errors)));
+            }
+        }
+        Ok((self.ordered(spectrum(jacobian, n)?), None))
     }
 
     /// The contract's order: that of the spectrum, for maps by falling modulus.

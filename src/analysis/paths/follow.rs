@@ -12,6 +12,8 @@ use super::walk::{Event, Walk};
 const STEP: f64 = 1e-7;
 /// States in a path, at most.
 const MOST_STATES: usize = 20_000;
+/// States that a step is recorded by.
+const PARTS: u32 = 4;
 /// States between two questions whether to stop.
 const ASK_EVERY: usize = 64;
 
@@ -45,7 +47,7 @@ pub struct Path {
 
 /// Follows the path from a state of all species for a time; backwards where that is negative.
 ///
-/// States are as far apart as steps are; a last one stands at the time itself. A species that reaches 0 while its equation
+/// States are a quarter of a step apart; a last one stands at the time itself. A species that reaches 0 while its equation
 /// would take it below is lost, and the path goes on without it; backwards the path ends there.
 pub fn follow(subject: &mut Subject<'_>, start: &[f64], until: f64, stop: &dyn Fn() -> bool) -> Path {
     let mut path = Path { times: vec![0.0], states: vec![start.to_vec()], lost: Vec::new(), ended: Ended::InTime };
@@ -87,7 +89,7 @@ impl Path {
     fn is_full(&mut self, stop: &dyn Fn() -> bool) -> bool {
         if self.times.len() >= MOST_STATES {
             self.ended = Ended::TooManyStates;
-        } else if self.times.len().is_multiple_of(ASK_EVERY) && stop() {
+        } else if self.times.len() % ASK_EVERY < PARTS as usize && stop() {
             self.ended = Ended::Asked;
         } else {
             return false;
@@ -119,6 +121,7 @@ impl Path {
                 }
             };
             let knot = walk.trail.len() - 1;
+            self.on_the_way(begun, &walk, walk.trail.times()[knot]);
             let mut state = face.state(walk.trail.state(knot));
             if let Event::Emptied(coordinate) = event {
                 state[face.present[coordinate]] = 0.0;
@@ -128,6 +131,18 @@ impl Path {
             self.push(begun + walk.trail.times()[knot], state);
         }
         None
+    }
+
+    /// The states between a step's ends, up to a time within it.
+    fn on_the_way(&mut self, begun: f64, walk: &Walk<'_>, until: f64) {
+        let (start, end) = (walk.stepper.before(), walk.stepper.time());
+        let reached = (until - start) / (end - start);
+        let mut there = vec![0.0; walk.face.len()];
+        for part in 1..PARTS {
+            let share = f64::from(part) / f64::from(PARTS);
+            walk.stepper.dense().at(share * reached, &mut there);
+            self.push(begun + start + share * (until - start), walk.face.state(&there));
+        }
     }
 
     fn iterate(&mut self, face: &Face, until: f64, step: f64, stop: &dyn Fn() -> bool) -> Option<usize> {

@@ -2,8 +2,11 @@
 
 use super::{entry, sketch, values};
 use crate::app::action::{Action, Step};
-use crate::app::geometry::{equilibria, listed};
+use crate::app::geometry::{equilibria, listed, values as parts_of_values};
 use crate::app::{App, Dialog, Effect, Purpose, Screen};
+
+/// More numbers than an equilibrium has lines of; the screen shows the last where that is passed.
+const MOST_NUMBERS: usize = 200;
 
 /// Does it.
 pub(super) fn act(app: &mut App, action: Action) -> Vec<Effect> {
@@ -16,6 +19,11 @@ pub(super) fn act(app: &mut App, action: Action) -> Vec<Effect> {
         Action::Show(screen) => show(app, screen),
         Action::Step(step) => walk(app, step),
         Action::Scenario(step) => scenario(app, step),
+        Action::Numbers(step) => {
+            if let Some(study) = &mut app.study {
+                study.facts_from = stepped(study.facts_from, MOST_NUMBERS, 1, step);
+            }
+        }
         Action::Accept => return entry::accept(app),
         Action::Type => entry::begin(app),
         Action::Write => entry::open(app, Purpose::Write),
@@ -70,6 +78,9 @@ fn show(app: &mut App, screen: Screen) {
     app.screen = screen;
     if let Some(study) = &mut app.study {
         study.sketch.hold = None;
+        if screen == Screen::Values {
+            values::show(study);
+        }
     }
 }
 
@@ -93,12 +104,14 @@ fn walk(app: &mut App, step: Step) {
             app.chooser.chosen = stepped(app.chooser.chosen, app.chooser.entries.len(), page, step);
         }
         (None, Screen::Values, Some(study)) => {
+            let page = listed(parts_of_values(app.size, study.count()).list);
             study.parameter = stepped(study.parameter, study.model().parameters.len(), page, step);
         }
         (None, _, Some(study)) => {
             let count = study.count();
             let page = listed(equilibria(app.size, count).list);
             study.chosen = stepped(study.chosen, count, page, step);
+            study.facts_from = 0;
         }
         _ => {}
     }
@@ -121,10 +134,9 @@ pub(super) fn stepped(place: usize, count: usize, page: usize, step: Step) -> us
 fn scenario(app: &mut App, step: Step) {
     let Some(study) = &mut app.study else { return };
     let count = study.slots.len().max(1);
-    let name = study.name_of_chosen();
-    study.current = match step {
+    let slot = match step {
         Step::Back => (study.current + count - 1) % count,
         _ => (study.current + 1) % count,
     };
-    study.choose_named(name.as_deref());
+    values::turn_to(study, slot);
 }

@@ -3,6 +3,7 @@
 use std::sync::Arc;
 
 use super::acts::reload;
+use super::reread::{reread, shown};
 use crate::app::study::{Slot, World};
 use crate::app::task::{Answer, Task};
 use crate::app::{App, Dialog, Effect, JobId, Msg, Read, Screen, Source, Study};
@@ -22,10 +23,17 @@ pub(super) fn arrive(app: &mut App, msg: Msg) -> Vec<Effect> {
 
 fn answered(app: &mut App, id: JobId, answer: Answer) -> Vec<Effect> {
     match (app.desk.take(id, answer.clone()), answer) {
-        (Some(Task::Read(source, _)), Answer::Read(read)) => return read_model(app, source, read),
+        (Some(Task::Read(source, ..)), Answer::Read(read)) => return read_model(app, source, read),
         (Some(Task::Solve { world, .. }), Answer::Solved(scene)) => {
             if let Some(study) = &mut app.study {
                 study.take(&world, *scene);
+            }
+        }
+        (Some(Task::Name { .. }), Answer::Named(names)) => {
+            if let Some(study) = &mut app.study {
+                // It was asked for just these: whoever is found since then asks anew.
+                let slots = study.nameable();
+                study.name(slots, &names);
             }
         }
         (Some(Task::Prepare(..)), Answer::Prepared(Ok(world))) => prepared(app, world),
@@ -42,9 +50,12 @@ fn read_model(app: &mut App, source: Source, read: Read) -> Vec<Effect> {
     match read {
         Read::Ready(world) => {
             let tables = world.original.tables.iter().map(|(name, _)| name.clone()).collect();
+            // What was wrong with the file has been mended.
+            if matches!(app.dialog, Some(Dialog::Message { .. })) {
+                app.dialog = None;
+            }
             if is_again {
-                again(app, &world);
-                app.say("the file was read again");
+                reread(app, &source, &world);
             } else {
                 open(app, source.clone(), &world);
             }
@@ -68,37 +79,19 @@ fn read_model(app: &mut App, source: Source, read: Read) -> Vec<Effect> {
 }
 
 fn open(app: &mut App, source: Source, world: &Arc<World>) {
-    let scenarios = &world.original.model.scenarios;
-    let is_wanted = |name: &String| app.only.is_empty() || app.only.contains(name);
-    let shown: Vec<usize> = (0..scenarios.len()).filter(|&k| is_wanted(&scenarios[k].name)).collect();
-    app.study = Some(Study::new(source, Arc::clone(world), shown));
+    let model = &world.original.model;
+    app.study = Some(Study::new(source, Arc::clone(world), shown(model, &app.only)));
     app.screen = Screen::Equilibria;
     app.notice = None;
+    let unknown: Vec<&str> =
+        app.set.iter().map(|(name, _)| name.as_str()).filter(|name| !model.names.contains_key(*name)).collect();
+    if !unknown.is_empty() {
+        app.complain(format!("this model has no parameter {}, which was set at the start", unknown.join(", ")));
+    }
 }
 
-/// Keeps the place: scenarios by name, the equilibrium by name, the sketch as it is; what was found is shown until it is
-/// found again.
-fn again(app: &mut App, world: &Arc<World>) {
-    let Some(old) = app.study.take() else { return };
-    let model = &world.original.model;
-    let current = old.slot().map(|slot| slot.name().to_owned());
-    let chosen = old.name_of_chosen();
-    let mut study = Study::new(old.source.clone(), Arc::clone(world), 0..model.scenarios.len());
-    let is_alike = old.model().species == model.species;
-    for slot in &mut study.slots {
-        let before = old.slots.iter().find(|before| before.name() == slot.name());
-        slot.found = before.filter(|_| is_alike).and_then(|before| before.found.clone());
-    }
-    study.current = study.slots.iter().position(|slot| Some(slot.name()) == current.as_deref()).unwrap_or(0);
-    if is_alike {
-        study.sketch = old.sketch.clone();
-    }
-    study.name_all();
-    study.choose_named(chosen.as_deref());
-    app.study = Some(study);
-}
-
-/// The tried scenario has its equations: it takes the last slot.
+/// The tried scenario has its equations: it takes the last slot. What was found with other values is shown until it is
+/// searched.
 fn prepared(app: &mut App, world: Arc<World>) {
     let Some(study) = &mut app.study else { return };
     if world.edition != study.tried.edition {
@@ -106,11 +99,19 @@ fn prepared(app: &mut App, world: Arc<World>) {
     }
     let scenario = world.original.model.scenarios.len().saturating_sub(1);
     let of_file = study.of_file();
-    let found = study.slots.get(of_file).and_then(|slot| slot.found.clone());
+    let base = study.tried.now.base;
+    // What is shown until it is searched: what was tried before, else what its base has.
+    let before =
+        if study.slots.len() > of_file { Some(of_file) } else { study.slots.iter().position(|s| s.scenario == base) };
+    let found = before.and_then(|place| study.slots[place].found.clone());
+    let names = before.map_or_else(Vec::new, |place| study.names(place).to_vec());
+    let wanted = study.name_of_chosen().or(study.wanted.take());
     study.slots.truncate(of_file);
     study.slots.push(Slot { world, scenario, found });
-    let name = study.name_of_chosen();
-    study.current = of_file;
-    study.name_all();
-    study.choose_named(name.as_deref());
+    study.names.resize(of_file + 1, Vec::new());
+    study.names[of_file] = names;
+    if std::mem::take(&mut study.tried.follow) {
+        study.current = of_file;
+    }
+    study.choose_named(wanted.as_deref());
 }

@@ -7,10 +7,11 @@
 mod acts;
 mod arrivals;
 mod entry;
+mod reread;
 mod sketch;
 mod values;
 
-use super::geometry::{equilibria, listed, scrolled};
+use super::geometry::{equilibria, listed, scrolled, values as values_parts};
 use super::keymap::{Place, lookup, place};
 use super::wants::wants;
 use super::{App, Effect, Msg};
@@ -53,4 +54,6 @@ fn settle(app: &mut App) {
     study.from = scrolled(study.from, study.chosen, count, listed(equilibria(size, count).list));
     let parameters = study.model().parameters.len();
     study.parameter = study.parameter.min(parameters.saturating_sub(1));
+    let room = listed(values_parts(size, count).list);
+    study.parameters_from = scrolled(study.parameters_from, study.parameter, parameters, room);
 }

@@ -5,7 +5,7 @@
 //! a value keeps about 106 bits, and the digits that cancellation takes are covered by `rest`. For residuals at a point and
 //! such: it is some ten times slower than an [`Interval`], and for wide sets no better. `elementary` has exp, ln and
 //! their like. To add an operation, give it here, falling back on [`Double::around`] an interval where precision has no
-//! hold, and a line in `tests/double_arithmetic.rs`.
+//! hold, and a line in `tests/numbers/double_arithmetic.rs`.
 
 mod elementary;
 

@@ -6,6 +6,10 @@
 /// The parts, in an order in which an entry (i, j) that is not 0 never has j in an earlier part than i; within a part the
 /// indices rise. Two searches, along the arrows and against them (Kosaraju 1978; Sharir 1981).
 pub(crate) fn strongly_connected(n: usize, linked: impl Fn(usize, usize) -> bool) -> Vec<Vec<usize>> {
+    // Most matrices that are not small have no zero, and need no search.
+    if n > 0 && (1..n).all(|i| linked(0, i) && linked(i, 0)) {
+        return vec![(0..n).collect()];
+    }
     let mut finished = Vec::with_capacity(n);
     let mut seen = vec![false; n];
     for start in 0..n {

@@ -1,13 +1,17 @@
-//! The real Schur form of a scaled and balanced block, from the library's iteration with a bound on it.
+//! Scaled and balanced blocks: eigenvalues alone by [`super::francis`], the real Schur form from the library's iteration with
+//! a bound on it.
 //!
 //! The plain double-shift iteration (Francis 1961) goes round in circles on some orthogonal matrices, rings and cyclic
 //! permutations among them; turned by a reflection they are as easy as any. Nothing here is random: the turns are fixed.
+#![expect(clippy::inline_always, reason = "the loops must end up inside the variant compiled for a processor feature")]
 
 use nalgebra::{Complex, DMatrix, Schur};
 
-use super::Unsolved;
-use super::two;
+use super::francis::{Part, parts};
+use super::hessenberg::Columns;
+use super::{Unsolved, two};
 use crate::num::random::Source;
+use crate::num::wide::{self, Loops};
 
 /// Steps allowed for each eigenvalue; two or three are usual.
 const STEPS_AN_EIGENVALUE: usize = 30;
@@ -30,19 +34,40 @@ pub(super) fn schur(entries: &[f64], n: usize) -> Result<RealSchur, Unsolved> {
     (1..=TURNS).find_map(|turn| turned(&matrix, turn)).ok_or(Unsolved::NoConvergence)
 }
 
-/// Eigenvalues in the order of T's diagonal.
+/// Eigenvalues of the same, in no order.
 pub(super) fn values(entries: &[f64], n: usize) -> Result<Vec<Complex<f64>>, Unsolved> {
-    let t = schur(entries, n)?.t;
+    let turned = |turn: u64| {
+        let (matrix, _) = turn_of(&DMatrix::from_row_slice(n, n, entries), turn);
+        parts_of(Columns::new(matrix.transpose().as_slice(), n))
+    };
+    let found = parts_of(Columns::new(entries, n)).or_else(|| (1..=TURNS).find_map(turned));
     let mut values = Vec::with_capacity(n);
-    while values.len() < n {
-        let k = values.len();
-        if k + 1 < n && t[(k + 1, k)] != 0.0 {
-            values.extend(two::values(&[t[(k, k)], t[(k, k + 1)], t[(k + 1, k)], t[(k + 1, k + 1)]]));
-        } else {
-            values.push(Complex::new(t[(k, k)], 0.0));
+    for part in found.ok_or(Unsolved::NoConvergence)? {
+        match part {
+            Part::One(value) => values.push(Complex::new(value, 0.0)),
+            Part::Two(block) => values.extend(two::values(&block)),
         }
     }
     Ok(values)
+}
+
+fn parts_of(matrix: Columns) -> Option<Vec<Part>> {
+    let mut found = None;
+    wide::execute(Iteration { matrix, found: &mut found });
+    found
+}
+
+struct Iteration<'f> {
+    matrix: Columns,
+    found: &'f mut Option<Vec<Part>>,
+}
+
+impl Loops for Iteration<'_> {
+    #[inline(always)]
+    fn run(mut self) {
+        self.matrix.reduce();
+        *self.found = parts(&mut self.matrix);
+    }
 }
 
 fn attempt(matrix: DMatrix<f64>) -> Option<RealSchur> {
@@ -52,8 +77,16 @@ fn attempt(matrix: DMatrix<f64>) -> Option<RealSchur> {
     finite.then_some(RealSchur { q, t })
 }
 
-/// The same after two reflections H = I − 2 u uᵀ: A = H (H A H) H.
+/// The same after two reflections: A = H (H A H) H.
 fn turned(matrix: &DMatrix<f64>, turn: u64) -> Option<RealSchur> {
+    let (matrix, axes) = turn_of(matrix, turn);
+    let mut found = attempt(matrix)?;
+    axes.iter().rev().for_each(|axis| reflect_rows(&mut found.q, axis));
+    Some(found)
+}
+
+/// H A H for two reflections H = I − 2 u uᵀ/|u|² after each other, and their u.
+fn turn_of(matrix: &DMatrix<f64>, turn: u64) -> (DMatrix<f64>, Vec<Vec<f64>>) {
     let mut source = Source::new(turn);
     let mut turned = matrix.clone();
     let mut axes = Vec::new();
@@ -63,9 +96,7 @@ fn turned(matrix: &DMatrix<f64>, turn: u64) -> Option<RealSchur> {
         reflect_columns(&mut turned, &axis);
         axes.push(axis);
     }
-    let mut found = attempt(turned)?;
-    axes.iter().rev().for_each(|axis| reflect_rows(&mut found.q, axis));
-    Some(found)
+    (turned, axes)
 }
 
 fn length_squared(axis: &[f64]) -> f64 {

@@ -3,12 +3,14 @@
 //! [`eigenvalues`] and [`spectrum`] are the ways in, [`symmetric()`], [`largest_symmetric`] and [`largest_singular`] for growth
 //! at once, and [`Discriminant`] for the border between node and spiral. A matrix is divided along its zeros (`blocks`), each
 //! block scaled and balanced by powers of two (`scale`), solved in closed form ([`two()`] and [`three()`], which allocate next to
-//! nothing) or by an iteration (`general`), and put together again (`triangular`, `vectors`; orders two and three in
+//! nothing) or by an iteration (`general`; values alone on `hessenberg` and `francis`), and put together again (`triangular`, `vectors`; orders two and three in
 //! `small`). All numerical: what is *proved* of a spectrum is said by [`verified`](super::verified). The library's own calls
 //! for eigenvalues may run for ever; the lint settings forbid them.
 
 mod blocks;
+mod francis;
 mod general;
+mod hessenberg;
 mod scale;
 mod small;
 mod symmetric;
@@ -104,15 +106,12 @@ fn contract_order(a: &Complex<f64>, b: &Complex<f64>) -> std::cmp::Ordering {
 /// If there are not n² entries.
 pub fn eigenvalues(entries: &[f64], n: usize) -> Result<Vec<Complex<f64>>, Unsolved> {
     assert_eq!(entries.len(), n * n, "entries of a matrix of order {n}");
-    if entries.iter().any(|x| !x.is_finite()) {
-        return Err(Unsolved::NotFinite);
-    }
-    let mut values = match *entries {
-        [a] => return Ok(vec![Complex::new(a, 0.0)]),
+    match *entries {
         [a, b, c, d] => return Ok(two(&[a, b, c, d])?.to_vec()),
         [a, b, c, d, e, f, g, h, i] => return Ok(three(&[a, b, c, d, e, f, g, h, i])?.to_vec()),
-        _ => by_blocks(entries, n)?,
-    };
+        _ => all_finite(entries)?,
+    }
+    let mut values = by_blocks(entries, n)?;
     if values.iter().any(|z| !z.is_finite()) {
         return Err(Unsolved::NotFinite);
     }
@@ -122,6 +121,9 @@ pub fn eigenvalues(entries: &[f64], n: usize) -> Result<Vec<Complex<f64>>, Unsol
 
 /// As [`eigenvalues`] of a matrix of order two, without an allocation.
 pub fn two(entries: &[f64; 4]) -> Result<[Complex<f64>; 2], Unsolved> {
+    if two::is_moderate(entries) {
+        return Ok(two::values_near_one(entries));
+    }
     all_finite(entries)?;
     let values = two::values(entries);
     if values.iter().all(|z| z.is_finite()) { Ok(values) } else { Err(Unsolved::NotFinite) }

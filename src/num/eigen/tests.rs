@@ -125,3 +125,69 @@ fn a_map_has_its_own_order() {
     let [before, after] = [found, turned].map(|s| s.vectors.expect("asked for").right);
     assert_eq!([before[0], before[2]], [after[1], after[3]]);
 }
+
+/// Eigenvalues of larger matrices by hand.
+#[test]
+fn rings_and_chains_of_any_order() {
+    // Roots of one, by falling real part: a cyclic permutation, which double shifts alone never solve.
+    for n in 4..65 {
+        let mut ring = vec![0.0; n * n];
+        (0..n).for_each(|i| ring[i * n + (i + 1) % n] = 1.0);
+        let angle = |k: usize| std::f64::consts::TAU * k as f64 / n as f64;
+        let root = |k: usize| (angle(k).cos(), angle(k).sin());
+        let mut roots = vec![(1.0, 0.0)];
+        for k in 1..n.div_ceil(2) {
+            roots.extend([root(k), (root(k).0, -root(k).1)]);
+        }
+        if n % 2 == 0 {
+            roots.push((-1.0, 0.0));
+        }
+        check(&ring, n, &roots, 1e-14 * n as f64);
+    }
+    // Entries k and n − k beside the diagonal: n − 1, n − 3, …, 1 − n (Kac 1947), well conditioned once balanced.
+    for n in [5, 12, 25] {
+        let mut chain = vec![0.0; n * n];
+        for k in 1..n {
+            chain[(k - 1) * n + k] = k as f64;
+            chain[k * n + k - 1] = (n - k) as f64;
+        }
+        let values: Vec<(f64, f64)> = (0..n).map(|k| ((n - 1) as f64 - 2.0 * k as f64, 0.0)).collect();
+        check(&chain, n, &values, 1e-13 * n as f64);
+    }
+}
+
+/// Sums of eigenvalues and of their squares are the traces of A and A².
+#[test]
+fn traces_agree() {
+    let mut source = Source::new(17);
+    for n in (4..40).chain([63, 64, 65, 130]) {
+        let entries: Vec<f64> = (0..n * n).map(|_| source.between(-1.0, 1.0)).collect();
+        let found = eigenvalues(&entries, n).expect("random");
+        let trace: f64 = (0..n).map(|i| entries[i * n + i]).sum();
+        let square: f64 = (0..n * n).map(|k| entries[k] * entries[k % n * n + k / n]).sum();
+        let sums =
+            [found.iter().sum::<Complex<f64>>() - trace, found.iter().map(|z| z * z).sum::<Complex<f64>>() - square];
+        let size = entries.iter().map(|x| x * x).sum::<f64>();
+        let bounds = [1e-14 * (n as f64 * size).sqrt(), 1e-14 * size];
+        assert!(sums.iter().zip(bounds).all(|(sum, bound)| sum.norm() <= bound), "order {n}: {sums:?} {bounds:?}");
+    }
+}
+
+/// What the library's Schur form says of the same matrices, with sizes from one row to the next that differ much.
+#[test]
+fn graded_matrices_agree_with_the_schur_form() {
+    let mut source = Source::new(23);
+    for n in [4, 7, 20, 50] {
+        for ratio in [0.9, 0.3f64] {
+            let entries: Vec<f64> =
+                (0..n * n).map(|k| source.between(-1.0, 1.0) * ratio.powi((k / n + k % n) as i32)).collect();
+            let Spectrum { values, vectors } = spectrum(&entries, n).expect("random");
+            let condition = vectors.expect("asked for").condition;
+            let alone = eigenvalues(&entries, n).expect("random");
+            for (value, condition) in values.iter().zip(condition) {
+                let off = alone.iter().map(|z| (z - value).norm()).fold(f64::INFINITY, f64::min);
+                assert!(off <= 1e-14 * n as f64 * condition, "order {n}, {ratio}: {value} off by {off:e}");
+            }
+        }
+    }
+}

@@ -63,13 +63,17 @@ fn scaled(&[a, b, c, d]: &[f64; 4]) -> ([f64; 4], i32) {
 /// A real pair: the one of larger modulus from the sum, the other as determinant over it, so that a small one keeps its
 /// digits; a complex pair is exactly conjugate.
 pub(super) fn values(entries: &[f64; 4]) -> [Complex<f64>; 2] {
-    // Within these no product of four can leave the range of f64, so powers of two change nothing.
-    let is_moderate = |x: &f64| *x == 0.0 || (1e-70..1e70).contains(&x.abs());
-    if entries.iter().all(is_moderate) {
+    if is_moderate(entries) {
         return values_near_one(entries);
     }
     let (near, exponent) = scaled(entries);
     values_near_one(&near).map(|z| Complex::new(times_power(z.re, exponent), times_power(z.im, exponent)))
+}
+
+/// Whether no product of four entries can leave the range of f64, so that powers of two change nothing.
+pub(super) fn is_moderate(entries: &[f64; 4]) -> bool {
+    // Without a branch for each entry, and false for what is not finite.
+    entries.iter().fold(true, |is, &x| is & ((x == 0.0) | ((x.abs() >= 1e-70) & (x.abs() < 1e70))))
 }
 
 /// As [`values`], of entries whose products neither overflow nor underflow.
@@ -79,25 +83,35 @@ pub(super) fn values_near_one(entries: &[f64; 4]) -> [Complex<f64>; 2] {
     if b == 0.0 || c == 0.0 {
         return [real(a.max(d)), real(a.min(d))];
     }
-    let middle = f64::midpoint(a, d);
-    let discriminant = Discriminant::of_scaled(entries).value;
+    let middle = 0.5 * (a + d);
+    let half = 0.5 * (a - d);
+    let (square, product) = (half * half, b * c);
+    let plain = square + product;
+    // Where no digit cancels, plain arithmetic is off by a few units in the last place, and the root by half as many.
+    let discriminant =
+        if plain.abs() >= 0.5 * (square + product.abs()) { plain } else { Discriminant::of_scaled(entries).value };
     if discriminant < 0.0 {
         let turn = (-discriminant).sqrt();
         return [Complex::new(middle, turn), Complex::new(middle, -turn)];
     }
     let reach = discriminant.sqrt();
-    let far = if middle < 0.0 { middle - reach } else { middle + reach };
+    let far = middle + reach.copysign(middle);
     if far == 0.0 {
         return [real(0.0), real(0.0)];
     }
     // (a + d)/2 cancels where the far one does not, and then the near one is as large as it.
     let near = if middle.abs() > reach / 2.0 { determinant(entries) / far } else { middle - reach.copysign(far) };
-    [real(far.max(near)), real(far.min(near))]
+    if far > near { [real(far), real(near)] } else { [real(near), real(far)] }
 }
 
-/// a d − b c to two units in the last place (Kahan; Jeannerod, Louvet & Muller 2013).
+/// a d − b c to a few units in the last place, by plain arithmetic where no digit cancels (else Kahan's way; Jeannerod,
+/// Louvet & Muller 2013).
 fn determinant(&[a, b, c, d]: &[f64; 4]) -> f64 {
-    let product = b * c;
+    let (main, product) = (a * d, b * c);
+    let plain = main - product;
+    if plain.abs() >= 0.5 * (main.abs() + product.abs()) {
+        return plain;
+    }
     a.mul_add(d, -product) - b.mul_add(c, -product)
 }
 

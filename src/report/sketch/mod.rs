@@ -19,12 +19,15 @@ mod ticks;
 mod trace;
 
 pub use canvas::{Canvas, draw};
+pub(super) use drawing::fitted;
 pub use drawing::{drawing, place_in_drawing, point_in_drawing};
+pub(super) use ending::entry;
 pub use ending::{came_from, ends};
 pub use meanings::signs_used;
 pub use plot::{LARGEST, Plot, SMALLEST, Size, legend_rows};
 pub use signs::{Growth, Mark, flow, spacing};
 pub use text::{closing, heading, text};
+pub(super) use ticks::start;
 pub use ticks::{Tick, across, round_numbers, upwards};
 pub use trace::Trace;
 

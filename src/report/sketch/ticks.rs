@@ -130,7 +130,7 @@ fn label(x: f64, step: f64) -> String {
 }
 
 /// Where a label begins that is to stand in the middle below its mark.
-pub(super) fn start(tick: &Tick) -> usize {
+pub(in crate::report) fn start(tick: &Tick) -> usize {
     tick.place.saturating_sub(tick.label.len() / 2)
 }
 

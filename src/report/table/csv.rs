@@ -18,9 +18,9 @@ pub fn csv(table: &Table<'_>, style: Style) -> String {
     let fields = Fields::new(table);
     let constants = constants(table);
     let mut text = line(&fields.names(table).into_iter().map(Value::from).collect::<Vec<_>>(), style);
-    for (scene, ids) in table.scenes.iter().zip(table.ids()) {
+    for (scene, ids) in table.named() {
         let (rows, context) = match &scene.outcome {
-            Ok(solved) => (table.rows(scene, solved, &ids), context(table, scene, solved, &ids)),
+            Ok(solved) => (table.rows(scene, solved, ids), context(table, scene, solved, ids)),
             Err(problems) => (Vec::new(), failed(&scene::problems(table.model, problems))),
         };
         let blank = if rows.is_empty() { Some(vec![Value::Null; fields.paths.len()]) } else { None };
@@ -70,7 +70,7 @@ impl Fields {
 }
 
 /// A field's name and its value.
-type Field = (&'static str, Value);
+pub(in crate::report) type Field = (&'static str, Value);
 
 /// What holds for all rows of a scenario.
 fn context(table: &Table<'_>, scene: &Scene, solved: &Solved, ids: &[String]) -> Vec<Field> {
@@ -99,7 +99,7 @@ fn failed(problems: &[String]) -> Vec<Field> {
 }
 
 /// What holds for the whole table.
-fn constants(table: &Table<'_>) -> Vec<Field> {
+pub(in crate::report) fn constants(table: &Table<'_>) -> Vec<Field> {
     let facts = provenance::facts(table, whole).into_iter().map(|fact| (fact.key, joined(&fact.texts)));
     let title = [("model", table.model.title.value.clone().into())];
     let end = [("interrupted", table.interrupted.into()), ("caution", words::CAUTION.into())];
@@ -111,7 +111,8 @@ fn joined(texts: &[String]) -> Value {
     if texts.is_empty() { Value::Null } else { texts.join("; ").into() }
 }
 
-fn line(values: &[Value], style: Style) -> String {
+/// A line of fields, ending in CR LF.
+pub(in crate::report) fn line(values: &[Value], style: Style) -> String {
     values.iter().map(|value| field(value, style)).collect::<Vec<_>>().join(",") + "\r\n"
 }
 

@@ -14,8 +14,7 @@ use super::{Row, Scene, Solved, Table, exact, paths, words};
 
 /// The table as a JSON object.
 pub fn json(table: &Table<'_>) -> Value {
-    let ids = table.ids();
-    let scenarios = table.scenes.iter().zip(&ids).map(|(scene, ids)| match &scene.outcome {
+    let scenarios = table.named().map(|(scene, ids)| match &scene.outcome {
         Ok(solved) => scenario(table, scene, solved, ids),
         Err(problems) => failed(table, scene, problems),
     });
@@ -53,7 +52,7 @@ fn scenario(table: &Table<'_>, scene: &Scene, solved: &Solved, ids: &[String]) -
     let from_now = solved.assessment.from_now.as_ref().map(|from| paths::from_now(place, from));
     let columns = table.columns(&[Shown::Everywhere, Shown::Files, Shown::Json]);
     let equilibria: Vec<Value> = table.rows(scene, solved, ids).iter().map(|row| equilibrium(&columns, row)).collect();
-    json!({
+    let mut all = json!({
         "name": scenario_name(table.model, scene),
         "parameters": values.map(|(parameter, &value)| (parameter.name.clone(), exact(value))).collect::<Map<_, _>>(),
         "search": {
@@ -65,7 +64,12 @@ fn scenario(table: &Table<'_>, scene: &Scene, solved: &Solved, ids: &[String]) -
         "from_now": from_now,
         "equilibria": equilibria,
         "overlay": table.model.scenarios.get(scene.scenario).map(|scenario| overlay(table, scenario, solved)),
-    })
+    });
+    let unfollowed = table.unfollowed(scene);
+    if !unfollowed.is_empty() {
+        all["names"] = json!(unfollowed);
+    }
+    all
 }
 
 fn search_box(table: &Table<'_>) -> Value {

@@ -1,124 +1,123 @@
 //! Names of equilibria that stay the same across the scenarios of one run: E1, E2, …
 //!
-//! An equilibrium is told by who is present and, among those with the same community, by its place. From one scenario to
-//! the next, those of a community are paired by nearest state, the nearest pair first; what finds no partner gets a new
-//! name, in the order of the list. This does not follow an equilibrium along a path between the scenarios, so that two of
-//! one community may change places where they come close.
+//! Which equilibrium is which is found out by following it from one scenario to the next, see `analysis::passage`; here
+//! numbers become names, and what could not be followed becomes a sentence. A name is never given for being near.
 
-use std::collections::BTreeMap;
+use crate::analysis::passage::{Identities, Reason};
 
-use crate::analysis::equilibria::Equilibrium;
-
-/// The name of every equilibrium of several scenarios, in the order of first appearance.
-pub fn identify(lists: &[&[Equilibrium]]) -> Vec<Vec<String>> {
-    let mut registry = Registry::default();
-    lists.iter().map(|list| registry.name(list)).collect()
+/// The names of the equilibria of some scenarios.
+#[derive(Clone, Debug, Default, PartialEq)]
+pub struct Names {
+    /// For each scenario shown, in the order of its list; none for a scenario that failed.
+    pub ids: Vec<Vec<String>>,
+    /// For each scenario shown, those of a new name that could not be followed back, with the reason.
+    pub unfollowed: Vec<Vec<(String, Reason)>>,
 }
 
-/// Everything named so far.
-#[derive(Default)]
-struct Registry<'e> {
-    /// By community: number of the name, and the equilibrium that had it last.
-    known: BTreeMap<Vec<bool>, Vec<(usize, &'e Equilibrium)>>,
-    named: usize,
-}
+impl Names {
+    /// The names of numbered equilibria.
+    pub fn new(identities: &Identities) -> Self {
+        let name = |number: &usize| format!("E{number}");
+        let ids: Vec<Vec<String>> =
+            identities.numbers.iter().map(|numbers| numbers.iter().map(name).collect()).collect();
+        let open = identities.unfollowed.iter().zip(&ids).map(|(open, ids)| {
+            open.iter().filter_map(|&(place, reason)| Some((ids.get(place)?.clone(), reason))).collect()
+        });
+        Self { unfollowed: open.collect(), ids }
+    }
 
-impl<'e> Registry<'e> {
-    fn name(&mut self, list: &'e [Equilibrium]) -> Vec<String> {
-        let mut communities: BTreeMap<Vec<bool>, Vec<usize>> = BTreeMap::new();
-        for (place, equilibrium) in list.iter().enumerate() {
-            communities.entry(community(equilibrium)).or_default().push(place);
-        }
-        let mut numbers: Vec<Option<usize>> = vec![None; list.len()];
-        for (community, places) in &communities {
-            let known = self.known.entry(community.clone()).or_default();
-            for (known_place, place) in pairs(known, list, places) {
-                known[known_place].1 = &list[place];
-                numbers[place] = Some(known[known_place].0);
+    /// The names of one scenario alone, of so many equilibria.
+    pub fn alone(count: usize) -> Self {
+        Self::new(&Identities { numbers: vec![(1..=count).collect()], unfollowed: vec![Vec::new()] })
+    }
+
+    /// The names of a scenario's equilibria, by its place among those shown.
+    pub fn of(&self, scene: usize) -> &[String] {
+        self.ids.get(scene).map_or(&[], Vec::as_slice)
+    }
+
+    /// What is to be said of those of a scenario that could not be followed: a sentence for each reason.
+    pub(in crate::report) fn sentences(&self, scene: usize) -> Vec<String> {
+        let open = self.unfollowed.get(scene).map_or(&[][..], Vec::as_slice);
+        let mut groups: Vec<(String, Vec<&str>)> = Vec::new();
+        for (id, reason) in open {
+            let why = why(*reason, "from the scenario before");
+            match groups.iter_mut().find(|(known, _)| *known == why) {
+                Some((_, ids)) => ids.push(id),
+                None => groups.push((why, vec![id])),
             }
         }
-        list.iter().zip(numbers).map(|(equilibrium, number)| self.text(equilibrium, number)).collect()
-    }
-
-    /// The name of a number; a new one where there is none.
-    fn text(&mut self, equilibrium: &'e Equilibrium, number: Option<usize>) -> String {
-        let number = number.unwrap_or_else(|| {
-            self.named += 1;
-            self.known.entry(community(equilibrium)).or_default().push((self.named, equilibrium));
-            self.named
-        });
-        format!("E{number}")
+        groups.into_iter().map(|(why, ids)| sentence(&ids, &why)).collect()
     }
 }
 
-/// Who is present.
-fn community(equilibrium: &Equilibrium) -> Vec<bool> {
-    (0..equilibrium.state.len()).map(|species| equilibrium.has(species)).collect()
+/// Names that a sentence lists; more would bury it.
+const MOST_LISTED: usize = 8;
+
+fn sentence(ids: &[&str], why: &str) -> String {
+    let more = ids.len().saturating_sub(MOST_LISTED);
+    let listed = ids[..ids.len() - more].join(", ");
+    let listed = if more == 0 { listed } else { format!("{listed} and {more} more") };
+    let (has, it) = if ids.len() == 1 { ("has a new name", "it") } else { ("have new names", "they") };
+    format!("{listed} {has}, but may be among those named before: {it} could not be followed, {why}.")
 }
 
-/// Pairs of places among the known and in the list, the nearest first, each place at most once.
-fn pairs(known: &[(usize, &Equilibrium)], list: &[Equilibrium], places: &[usize]) -> Vec<(usize, usize)> {
-    let mut all: Vec<(f64, usize, usize)> = Vec::new();
-    for (known_place, (_, old)) in known.iter().enumerate() {
-        all.extend(places.iter().map(|&place| (distance(&old.state, &list[place].state), known_place, place)));
+/// Why something could not be followed; `way` says which way the shares are of.
+pub(in crate::report) fn why(reason: Reason, way: &str) -> String {
+    let at = |share: f64| format!("at {} of the way {way}", percent(share));
+    match reason {
+        Reason::Singular => "for the state is singular, or nearly so".to_owned(),
+        Reason::NoDerivative => "for rates have no value or no derivative there".to_owned(),
+        Reason::Rough(share) => format!("for rates have no value, or change too abruptly, {}", at(share)),
+        Reason::Crossing(share) => format!("for branches cross, or nearly so, {}", at(share)),
+        Reason::Unlisted => "for its branch arrives at a state that was not found, or found twice".to_owned(),
+        Reason::Disagrees => "for followed back it does not come to where it began".to_owned(),
+        Reason::TooLong(share) => format!("for its branch is too long: it was left {}", at(share)),
+        Reason::Stopped => "for the search was told to stop, or its time was up".to_owned(),
     }
-    all.sort_by(|a, b| a.0.total_cmp(&b.0).then((a.1, a.2).cmp(&(b.1, b.2))));
-    let mut old_taken = vec![false; known.len()];
-    let mut new_taken = vec![false; list.len()];
-    let mut chosen = Vec::new();
-    for (_, old, new) in all {
-        if !old_taken[old] && !new_taken[new] {
-            (old_taken[old], new_taken[new]) = (true, true);
-            chosen.push((old, new));
-        }
-    }
-    chosen
 }
 
-/// The sum over species of |a − b| / (|a| + |b|), between 0 and 1 each, so that no unit weighs more than another.
-fn distance(a: &[f64], b: &[f64]) -> f64 {
-    let share = |(a, b): (&f64, &f64)| {
-        let size = a.abs() + b.abs();
-        if size > 0.0 { (a - b).abs() / size } else { 0.0 }
-    };
-    a.iter().zip(b).map(share).sum()
+/// A share of the way in per cent, never all or nothing where it is neither.
+pub(in crate::report) fn percent(share: f64) -> String {
+    match share {
+        x if x <= 0.0 => "0 %".to_owned(),
+        x if x >= 1.0 => "100 %".to_owned(),
+        x if x < 0.001 => "under 0.1 %".to_owned(),
+        x if x > 0.999 => "over 99.9 %".to_owned(),
+        x => format!("{:.1} %", 100.0 * x),
+    }
 }
 
 #[cfg(test)]
 mod tests {
     use super::*;
-    use crate::analysis::equilibria::Derivative;
-    use crate::num::interval::Interval;
 
-    fn at(state: &[f64]) -> Equilibrium {
-        Equilibrium {
-            state: state.to_vec(),
-            enclosure: state.iter().map(|&x| Interval::point(x)).collect(),
-            proven: true,
-            derivative: Derivative::Exists,
+    #[test]
+    fn shares_of_the_way_are_never_rounded_to_its_ends() {
+        for (share, text) in [
+            (0.0, "0 %"),
+            (1e-9, "under 0.1 %"),
+            (0.001, "0.1 %"),
+            (0.0712, "7.1 %"),
+            (0.374_49, "37.4 %"),
+            (0.9995, "over 99.9 %"),
+            (1.0, "100 %"),
+        ] {
+            assert_eq!(percent(share), text);
         }
     }
 
-    fn check(lists: &[&[&[f64]]], expected: &[&[&str]]) {
-        let lists: Vec<Vec<Equilibrium>> =
-            lists.iter().map(|list| list.iter().map(|state| at(state)).collect()).collect();
-        let named = identify(&lists.iter().map(Vec::as_slice).collect::<Vec<_>>());
-        assert_eq!(named, expected, "{lists:?}");
-    }
-
     #[test]
-    fn names_follow_the_community_and_the_nearest_state() {
-        check(&[], &[]);
-        // The pair of a fold is gone in the second scenario and back in the third.
-        check(
-            &[&[&[0.0], &[1.0], &[5.0]], &[&[0.0], &[4.0]], &[&[0.0], &[1.2], &[4.5]]],
-            &[&["E1", "E2", "E3"], &["E1", "E3"], &["E1", "E2", "E3"]],
-        );
-        // Another community is another equilibrium, however near.
-        check(&[&[&[1.0, 0.0]], &[&[1.0, 1e-9]]], &[&["E1"], &["E2"]]);
-        // Units of abundance make no difference.
-        check(&[&[&[1.0, 9e6], &[2.0, 1e6]], &[&[1.1, 8e6], &[2.2, 1.1e6]]], &[&["E1", "E2"], &["E1", "E2"]]);
-        // A scenario that failed names nothing and forgets nothing.
-        check(&[&[&[2.0]], &[], &[&[3.0]]], &[&["E1"], &[], &["E1"]]);
+    fn what_could_not_be_followed_is_said_once_a_reason() {
+        let numbers = vec![vec![1, 2], (3..14).chain([1]).collect()];
+        let open: Vec<(usize, Reason)> = (0..11).map(|place| (place, Reason::Singular)).collect();
+        let names = Names::new(&Identities { numbers, unfollowed: vec![Vec::new(), open] });
+        assert_eq!(names.of(0), ["E1", "E2"]);
+        assert_eq!(names.of(1)[11], "E1");
+        assert_eq!(names.of(2), [] as [String; 0]);
+        assert_eq!(names.sentences(0), [] as [String; 0]);
+        let expected = "E3, E4, E5, E6, E7, E8, E9, E10 and 3 more have new names, but may be among those named before: they \
+                        could not be followed, for the state is singular, or nearly so.";
+        assert_eq!(names.sentences(1), [expected]);
     }
 }

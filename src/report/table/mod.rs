@@ -7,7 +7,8 @@
 //! not by words, in every format; every format carries what is needed to make the table again, and the caution.
 //!
 //! `identity` names equilibria, `number` rounds, `words` and `scene` have what all formats say, `paths` says where paths
-//! go, `provenance` what the table is of, `layout` makes lines, `guide` explains the columns, `glossary` those shown.
+//! go, `provenance` what the table is of, `layout` makes lines, `guide` explains the columns, `glossary` those shown, `facts`
+//! has one equilibrium for a screen.
 //!
 //! The JSON has the contract's keys in the contract's order, and some of its own after them:
 //!
@@ -15,32 +16,36 @@
 //! - in `from_now`: `starts`, how many starts the shares rest on; `cycle`, as in `settles`, where one is reached
 //! - in an equilibrium: the columns of `columns::own`
 //! - in a scenario: `overlay`, what it changes, `{"values": {name: number}, "without": […], "harvest": […], "processes":
-//!   […]}`
+//!   […]}`; `names`, sentences on equilibria with a new name that may be old ones, where there are any
 //! - at the end: `run`, `{"command", "set": {name: number}, "budget": {"seconds", "boxes"}, "interrupted"}`; `caution`
 
-mod columns;
-mod csv;
+pub(in crate::report) mod columns;
+pub(in crate::report) mod csv;
 mod data;
+mod facts;
 mod glossary;
 mod guide;
 mod identity;
-mod latex;
-mod layout;
-mod markdown;
+pub(in crate::report) mod latex;
+pub(in crate::report) mod layout;
+pub(in crate::report) mod markdown;
 mod number;
-mod paths;
-mod provenance;
-mod scene;
+pub(in crate::report) mod paths;
+pub(in crate::report) mod provenance;
+pub(in crate::report) mod scene;
 mod selection;
-mod sheet;
-mod text;
-mod words;
+pub(in crate::report) mod sheet;
+pub(in crate::report) mod text;
+pub(in crate::report) mod words;
 
 pub use columns::{COLUMNS, Column, Shown, Unit, columns};
 pub use csv::csv;
+pub(super) use csv::line;
 pub use data::json;
+pub use facts::{Case, Fact};
 pub use guide::guide;
-pub use identity::identify;
+pub use identity::Names;
+pub(in crate::report) use identity::{percent, why};
 pub use latex::latex;
 pub use markdown::markdown;
 pub use number::{bound, human, human_above, human_below};
@@ -80,6 +85,8 @@ pub struct Table<'t> {
     pub limits: Limits,
     /// The scenarios asked for, in the file's order.
     pub scenes: &'t [Scene],
+    /// The names of their equilibria.
+    pub names: &'t Names,
     /// Whether the search was broken off from outside.
     pub interrupted: bool,
     /// The columns asked for; without, each format shows what it shows by default.
@@ -185,19 +192,37 @@ impl<'t> Row<'t> {
 }
 
 impl<'t> Table<'t> {
-    /// The names of all equilibria, scenario by scenario; none for a scenario that failed.
-    fn ids(&self) -> Vec<Vec<String>> {
-        let list = |scene: &'t Scene| scene.outcome.as_ref().map_or(&[][..], |solved| &solved.equilibria.list);
-        identify(&self.scenes.iter().map(list).collect::<Vec<_>>())
+    /// Every scenario with the names of its equilibria; none for one that failed.
+    pub(in crate::report) fn named(&self) -> impl Iterator<Item = (&'t Scene, &'t [String])> {
+        let names = self.names;
+        self.scenes.iter().enumerate().map(|(place, scene)| (scene, names.of(place)))
     }
 
-    fn rows<'a>(&'a self, scene: &Scene, solved: &'a Solved, ids: &'a [String]) -> Vec<Row<'a>> {
+    /// What is to be said of those of a scenario that could not be followed from the one before.
+    fn unfollowed(&self, scene: &Scene) -> Vec<String> {
+        let place = self.scenes.iter().position(|other| other.scenario == scene.scenario);
+        place.map_or_else(Vec::new, |place| self.names.sentences(place))
+    }
+
+    pub(in crate::report) fn rows<'a>(&'a self, scene: &Scene, solved: &'a Solved, ids: &'a [String]) -> Vec<Row<'a>> {
         let list = solved.equilibria.list.iter().enumerate();
         list.map(|(place, equilibrium)| Row { table: self, scenario: scene.scenario, solved, ids, place, equilibrium })
             .collect()
     }
 
-    fn symbol(&self, species: usize) -> Option<&'t str> {
+    /// One equilibrium of a scenario as a row.
+    pub(in crate::report) fn row<'a>(
+        &'a self,
+        scene: &Scene,
+        solved: &'a Solved,
+        ids: &'a [String],
+        place: usize,
+    ) -> Option<Row<'a>> {
+        let equilibrium = solved.equilibria.list.get(place)?;
+        Some(Row { table: self, scenario: scene.scenario, solved, ids, place, equilibrium })
+    }
+
+    pub(in crate::report) fn symbol(&self, species: usize) -> Option<&'t str> {
         self.model.species.get(species).map(|species| species.symbol.as_str())
     }
 
@@ -217,12 +242,12 @@ impl<'t> Table<'t> {
 }
 
 /// A number that reads back the same; without a minus on zero, null where it is not finite.
-fn exact(x: f64) -> Value {
+pub(in crate::report) fn exact(x: f64) -> Value {
     // −0 + 0 = 0.
     (x + 0.0).into()
 }
 
 /// The same, and null where there is none.
-fn optional(x: Option<f64>) -> Value {
+pub(in crate::report) fn optional(x: Option<f64>) -> Value {
     x.map_or(Value::Null, exact)
 }

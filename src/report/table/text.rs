@@ -56,10 +56,10 @@ pub(in crate::report) fn clean(text: &str, style: Style) -> String {
 pub fn text(table: &Table<'_>, page: Page) -> String {
     let page = &Page { width: page.width.max(NARROWEST), ..page };
     let mut text = heading(table, page);
-    for (scene, ids) in table.scenes.iter().zip(table.ids()) {
+    for (scene, ids) in table.named() {
         text.push('\n');
         text.push_str(&match &scene.outcome {
-            Ok(solved) => title(table.model, scene, page) + &scenario(table, scene, solved, &ids, page),
+            Ok(solved) => title(table.model, scene, page) + &scenario(table, scene, solved, ids, page),
             Err(problems) => failed(table.model, scene, problems, page),
         });
     }
@@ -69,7 +69,7 @@ pub fn text(table: &Table<'_>, page: Page) -> String {
     text
 }
 
-fn heading(table: &Table<'_>, page: &Page) -> String {
+pub(in crate::report) fn heading(table: &Table<'_>, page: &Page) -> String {
     let model = table.model;
     let mut text = page.paragraph("", &model.title.value, 0);
     if let Some(note) = &model.note {
@@ -89,7 +89,7 @@ fn heading(table: &Table<'_>, page: &Page) -> String {
     text
 }
 
-fn title(model: &Model, scene: &Scene, page: &Page) -> String {
+pub(in crate::report) fn title(model: &Model, scene: &Scene, page: &Page) -> String {
     page.paragraph("", &format!("Scenario: {}", scene::name(model, scene)), 0)
 }
 
@@ -115,14 +115,14 @@ fn scenario(table: &Table<'_>, scene: &Scene, solved: &Solved, ids: &[String], p
 }
 
 /// What the search came to.
-fn verdict(equilibria: &Equilibria, page: &Page) -> String {
+pub(in crate::report) fn verdict(equilibria: &Equilibria, page: &Page) -> String {
     let (is_proof, verdict) = words::verdict(equilibria);
     let (word, ink) = if is_proof { (words::proof(true), Ink::Proved) } else { (words::INCOMPLETE, Ink::Undecided) };
     let line = page.paragraph("", &format!("{word}: {verdict}"), 2);
     line.replacen(word, &ink.paint(word, page), 1)
 }
 
-fn undecided(body: &str, page: &Page) -> String {
+pub(in crate::report) fn undecided(body: &str, page: &Page) -> String {
     let word = words::UNDECIDED;
     let lines = page.paragraph("  ?", &format!("{word}: {body}."), 4);
     lines.replacen(word, &Ink::Undecided.paint(word, page), 1)

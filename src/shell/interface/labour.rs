@@ -1,4 +1,5 @@
-//! Work beside the loop: one thread for searches and reading, one for what is quick.
+//! Work beside the loop: one thread for searches and reading, one for what lies between scenarios, one for
+//! what is quick.
 
 use std::collections::HashMap;
 use std::sync::atomic::{AtomicBool, Ordering};
@@ -27,6 +28,7 @@ struct Order {
 pub(super) struct Labour {
     slow: Sender<Order>,
     quick: Sender<Order>,
+    between: Sender<Order>,
     flags: HashMap<JobId, (Arc<AtomicBool>, bool)>,
 }
 
@@ -39,15 +41,19 @@ impl Labour {
             let _ = thread::Builder::new().name(name.to_owned()).spawn(move || work(&orders, threads, &events));
             sender
         };
-        Self { slow: begin("search"), quick: begin("quick"), flags: HashMap::new() }
+        Self { slow: begin("search"), quick: begin("quick"), between: begin("between"), flags: HashMap::new() }
     }
 
     /// Gives a task to a thread.
     pub(super) fn ask(&mut self, id: JobId, task: Task) {
         let stop = Arc::new(AtomicBool::new(false));
-        let is_quick = matches!(task, Task::Paint(_) | Task::Follow { .. } | Task::Prepare(..));
+        let to = match task {
+            Task::Read(..) | Task::Solve { .. } => &self.slow,
+            Task::Name { .. } => &self.between,
+            Task::Prepare(..) | Task::Paint(_) | Task::Follow { .. } => &self.quick,
+        };
+        let is_quick = !matches!(task, Task::Read(..) | Task::Solve { .. });
         self.flags.insert(id, (Arc::clone(&stop), is_quick));
-        let to = if is_quick { &self.quick } else { &self.slow };
         let _ = to.send(Order { id, task, stop });
     }
 

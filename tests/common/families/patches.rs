@@ -1,7 +1,7 @@
 //! Communities of patches with all 3ⁿ equilibria, none of them in closed form.
 //!
 //! Without dispersal each patch has three states. With a little, patch i still has exactly one near each of them for any
-//! inflow, `x_i = φ_σ(y_i)` with |φ'| < 1/8 (checked in `tests/families.rs`), and the inflows `y` are
+//! inflow, `x_i = φ_σ(y_i)` with |φ'| < 1/8 (checked in `tests/equilibria/families.rs`), and the inflows `y` are
 //! means of the x. So for each choice σ of states `x ↦ φ_σ(y(x))` is a contraction, with exactly one fixed point. The
 //! points given are these, to within [`WITHIN`]; that there are no others is the argument above.
 

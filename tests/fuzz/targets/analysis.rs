@@ -10,13 +10,14 @@ use libfuzzer_sys::fuzz_target;
 use restpoint::analysis::assess::{Assessment, assess};
 use restpoint::analysis::equilibria::{Budget, Equilibria, OneByOne, all};
 use restpoint::analysis::field::{LINEAR, Slice};
+use restpoint::analysis::passage::{Found, Ways, identify};
+use restpoint::analysis::prepare::Prepared;
 use restpoint::analysis::subject::Subject;
 use restpoint::model::Model;
 use restpoint::model::load::{NoFiles, load};
-use restpoint::model::system::System;
 use restpoint::report::sketch::{self, Picture, Plot, Size, View};
 use restpoint::report::table::{
-    Limits, Page, Scene, Selection, Solved, Style, Table, csv, identify, json, latex, markdown, text,
+    Limits, Names, Page, Scene, Selection, Solved, Style, Table, csv, json, latex, markdown, text,
 };
 
 /// Models of more species or scenarios take longer than they show.
@@ -29,6 +30,7 @@ const BOXES: usize = 60;
 /// How often the budget is asked until it ends: during the search, and after it.
 const SEARCH_ASKS: usize = 2_000;
 const PATH_ASKS: usize = 40;
+const NAMING_ASKS: usize = 5_000;
 
 fn asked(most: usize) -> impl Fn() -> bool + Sync {
     let count = AtomicUsize::new(0);
@@ -76,37 +78,52 @@ fn shown(table: &Table<'_>) {
 
 fn drawn(
     model: &Model,
-    system: &System,
-    sides: &[[f64; 2]],
-    bounds: &[restpoint::model::system::bounds::Bound],
+    prepared: &Prepared,
     scenes: &[Scene],
+    names: &Names,
 ) {
     let found: Vec<&Solved> = scenes.iter().filter_map(|scene| scene.outcome.as_ref().ok()).collect();
-    let lists: Vec<&[_]> = found.iter().map(|solved| &solved.equilibria.list[..]).collect();
     let axes = Slice::axes(model);
-    let window = sketch::window(model, bounds, &found, axes);
-    for ((scene, solved), ids) in scenes.iter().zip(&found).zip(identify(&lists)) {
-        let mut subject = Subject::new(model, &system.graph, &system.plans[scene.scenario], sides.to_vec());
+    let window = sketch::window(model, &prepared.bounds, &found, axes);
+    for ((scene, solved), ids) in scenes.iter().zip(&found).zip(&names.ids) {
+        let Ok(mut subject) = prepared.subject(model, scene.scenario) else { return };
         let slice = Slice::new(&subject, axes, &solved.equilibria, &solved.assessment);
         let scales = LINEAR;
-        let view = View { model, scenario: scene.scenario, solved, ids: &ids, slice: &slice, window, scales };
+        let view = View { model, scenario: scene.scenario, solved, ids, slice: &slice, window, scales };
         let picture = Picture::new(&mut subject, &view, &Plot::of(Size { columns: 30, rows: 10 }));
         sketch::text(&view, &picture, Page { width: 30, style: Style::Ascii, color: false });
     }
+}
+
+/// Names of all; no two of a scenario are the same.
+fn named(ways: &mut Ways, scenes: &[Scene]) -> Names {
+    let all: Vec<Option<Found<'_>>> = scenes
+        .iter()
+        .map(|scene| {
+            let solved = scene.outcome.as_ref().ok()?;
+            Some(Found { scenario: scene.scenario, list: &solved.equilibria.list })
+        })
+        .collect();
+    let identities = identify(ways, &all, &asked(NAMING_ASKS));
+    for (numbers, found) in identities.numbers.iter().zip(&all) {
+        let mut once = numbers.clone();
+        once.sort_unstable();
+        once.dedup();
+        assert_eq!(Some(once.len()), found.map(|found| found.list.len()), "a name for each");
+    }
+    Names::new(&identities)
 }
 
 fn everything(model: &Model) {
     if model.species.len() > MOST_SPECIES || model.scenarios.len() > MOST_SCENARIOS {
         return;
     }
-    let Ok(mut system) = System::new(model, &[]) else { return };
-    let Ok(bounds) = system.bounds(model) else { return };
-    let sides: Vec<[f64; 2]> = bounds.iter().map(|bound| [bound.lower, bound.upper]).collect();
-    let scene = |scenario: usize| {
-        let mut subject = Subject::new(model, &system.graph, &system.plans[scenario], sides.clone());
-        Scene { scenario, outcome: Ok(solved(&mut subject)) }
-    };
-    let scenes: Vec<Scene> = (0..system.plans.len()).map(scene).collect();
+    let Ok(prepared) = Prepared::new(model, &[]) else { return };
+    let subjects: Result<Vec<_>, _> = (0..model.scenarios.len()).map(|k| prepared.subject(model, k)).collect();
+    let Ok(subjects) = subjects else { return };
+    let scene = |(scenario, mut subject): (usize, Subject<'_>)| Scene { scenario, outcome: Ok(solved(&mut subject)) };
+    let scenes: Vec<Scene> = subjects.into_iter().enumerate().map(scene).collect();
+    let names = named(&mut Ways::new(model, &prepared), &scenes);
     let selection = Selection::read("all").ok();
     let table = Table {
         model,
@@ -114,14 +131,15 @@ fn everything(model: &Model) {
         tables: &[],
         command: "restpoint table fuzz.yaml",
         set: &[],
-        bounds: &bounds,
+        bounds: &prepared.bounds,
         limits: Limits { seconds: 1.0, boxes: BOXES },
         scenes: &scenes,
+        names: &names,
         interrupted: false,
         columns: selection.as_ref(),
     };
     shown(&table);
-    drawn(model, &system, &sides, &bounds, &scenes);
+    drawn(model, &prepared, &scenes, &names);
 }
 
 fuzz_target!(|bytes: &[u8]| {

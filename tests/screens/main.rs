@@ -1,0 +1,7 @@
+//! The screens without a terminal: keys go in, what is shown comes out. [`bench::Bench`] is the way to try one.
+
+#![allow(clippy::expect_used, clippy::panic, clippy::unwrap_used, reason = "a test fails by panicking")]
+
+mod bench;
+mod skeleton;
+mod walk;

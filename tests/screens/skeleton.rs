@@ -1,0 +1,34 @@
+//! What holds of every screen.
+
+use crate::bench::{Bench, SIZES};
+
+const TWO: &str = "\
+title: two levels
+time: yr
+species: {S: {unit: kt, upper: 20}, C: {unit: kt, upper: 20}}
+parameters: {k: {value: 5, range: [1, 9]}}
+change: {S: S*(k - S), C: C*(3 - C)}
+scenarios: {first: {}, second: {values: {k: 4}}}
+";
+
+#[test]
+fn a_model_is_read_and_searched_and_shown() {
+    for size in SIZES {
+        let bench = Bench::of(TWO).at(size).ascii();
+        bench.shows(&["two levels", "first (1 of 2)", "E1", "E4", "5.000 3.000"]);
+        assert!(bench.text().is_ascii());
+        assert_eq!(bench.text().lines().count(), usize::from(size[1]));
+    }
+}
+
+#[test]
+fn what_is_under_way_can_be_put_off() {
+    let mut bench = Bench::empty();
+    bench.hold();
+    let mut bench = bench.with(&crate::bench::shipped("skarnby-bank"));
+    assert_eq!(bench.status(), "reading");
+    bench.work();
+    bench.shows(&["Skarnby bank", "present fleet (1 of 5)"]);
+    bench.press("<Right>");
+    bench.shows(&["half the effort (2 of 5)"]);
+}
