@@ -14,6 +14,7 @@ use crate::model::{Model, Name, Original, ParameterId};
 use crate::report::sketch::{Picture, View};
 
 use super::clock::Deadline;
+use super::files::from_home;
 use super::models::{COMPILED, Reading, compiled, read};
 use super::solver::{BOXES, scene};
 use super::workers::Threads;
@@ -53,7 +54,7 @@ pub fn perform(task: Task, means: &Means<'_>) -> Answer {
 
 fn read_source(source: &Source, set: &[(String, f64)], edition: u64) -> Read {
     let reading = match source {
-        Source::File(path) => read(Some(path)),
+        Source::File(path) => read(Some(&from_home(path))),
         Source::Compiled(index) => match COMPILED.get(*index) {
             Some(model) => compiled(model),
             None => return Read::Unreadable("there is no such model".to_owned()),

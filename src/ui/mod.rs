@@ -43,6 +43,6 @@ fn body(app: &App, page: &mut Page<'_>, area: Area) {
         (_, _, Some(study)) => equilibria::draw(app, study, page),
     }
     if let Some(Dialog::Entry(entry)) = &app.dialog {
-        dialog::entry(page, area, entry);
+        dialog::entry(app, page, area, entry);
     }
 }

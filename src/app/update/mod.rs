@@ -1,13 +1,17 @@
 //! The only function that changes the state. Each answers with what is to be done outside.
 //!
 //! `acts` does what the user wants on every screen, `sketch` what concerns the sketch, `values` tried values, `entry` what is
-//! typed, `arrivals` what comes from outside. [`update()`] restores at its end what always holds: whatever is selected is
+//! typed, `record` what is written, `chooser` which models there are, `arrivals` what comes from outside, `reread` a file
+//! that has changed, `session` what outlives the program. [`update()`] restores at its end what always holds: whatever is selected is
 //! there and in sight; and asks for what the screen needs.
 
 mod acts;
 mod arrivals;
+mod chooser;
 mod entry;
+mod record;
 mod reread;
+mod session;
 mod sketch;
 mod values;
 
@@ -35,6 +39,8 @@ pub fn update(app: &mut App, msg: Msg) -> Vec<Effect> {
         Msg::Resumed => vec![Effect::Redraw],
         other => arrivals::arrive(app, other),
     };
+    effects.extend(session::keep(app));
+    effects.extend(chooser::list(app));
     settle(app);
     let wanted = wants(app);
     effects.extend(app.desk.demand(&wanted));

@@ -19,8 +19,9 @@ use std::time::{Duration, Instant};
 use anyhow::Result;
 
 use crate::app::{App, Msg, Size, Source, update};
+use crate::shell::memory::Memory;
 use crate::shell::workers::Threads;
-use crate::ui::view;
+use crate::ui::{text, view};
 use effects::Outside;
 use labour::Labour;
 use painter::Painter;
@@ -89,7 +90,8 @@ pub fn run(start: Start) -> Result<End> {
         app.reading = Some((source, app.edition));
     }
     let labour = Labour::start(start.threads, sender.clone());
-    let mut terminal = Interface { app, painter: Painter::default(), outside: Outside::new(labour, sender) };
+    let mut terminal =
+        Interface { app, painter: Painter::default(), outside: Outside::new(labour, sender, Memory::open()) };
     let end = terminal.go(&events);
     drop(screen);
     Ok(end)
@@ -164,6 +166,10 @@ impl Interface {
                     if let Some(end) = self.pause() {
                         return Some(end);
                     }
+                }
+                crate::app::Effect::WriteScreen { path, replace } => {
+                    let text = text(&self.app);
+                    self.outside.perform(crate::app::Effect::Write { path, text, replace });
                 }
                 effect => self.outside.perform(effect),
             }
