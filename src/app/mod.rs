@@ -99,6 +99,8 @@ pub struct Entry {
     pub cursor: usize,
     /// What is wrong with it, or what it could go on as.
     pub hint: String,
+    /// Whether the text is a suggestion: what is typed takes its place.
+    pub suggested: bool,
     /// The text as it was when its file was found to be there already: taken once more, it replaces the file.
     pub replaces: Option<String>,
 }

@@ -80,8 +80,14 @@ fn known(model: &Model, set: &[(String, f64)]) -> Vec<(ParameterId, f64)> {
         _ => None,
     };
     let allowed = |id: ParameterId, value| model.parameters.get(id.0).is_some_and(|one| one.ruled_out(value).is_none());
-    let found = set.iter().filter_map(|(name, value)| Some((find(name)?, *value)));
-    found.filter(|&(id, value)| allowed(id, value)).collect()
+    let mut found: Vec<(ParameterId, f64)> = Vec::new();
+    for (id, value) in set.iter().filter_map(|(name, value)| Some((find(name)?, *value))) {
+        if allowed(id, value) {
+            found.retain(|(other, _)| *other != id);
+            found.push((id, value));
+        }
+    }
+    found
 }
 
 /// The model with the tried scenario at its end, in the search box of the file.

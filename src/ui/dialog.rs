@@ -50,7 +50,9 @@ pub(super) fn entry(app: &App, page: &mut Page<'_>, area: Area, entry: &Entry) {
     let before = &entry.text[..entry.cursor];
     let skipped = before.char_indices().map(|(place, _)| place).find(|&place| before[place..].width() < room.max(2));
     let from = skipped.unwrap_or(0);
-    let at = page.text(line, [after, 1], &before[from..], Ink::Plain);
+    // What is only suggested looks selected: typing takes its place.
+    let ink = if entry.suggested { Ink::Chosen } else { Ink::Plain };
+    let at = page.text(line, [after, 1], &before[from..], ink);
     let under = entry.text[entry.cursor..].chars().next().unwrap_or(' ').to_string();
     let end = page.text(line, [at, 1], &under, Ink::Chosen);
     page.text(line, [end, 1], entry.text[entry.cursor..].strip_prefix(under.as_str()).unwrap_or(""), Ink::Plain);

@@ -30,7 +30,8 @@ const ABOUT_SCREEN: &str = "this screen as text, as it is; Tab: the table behind
 pub(super) fn open(app: &mut App, purpose: Purpose, text: String, hint: &str) {
     app.notice = None;
     let hint = hint.to_owned();
-    app.dialog = Some(Dialog::Entry(Entry { purpose, cursor: text.len(), text, hint, replaces: None }));
+    let (cursor, suggested) = (text.len(), !text.is_empty());
+    app.dialog = Some(Dialog::Entry(Entry { purpose, text, cursor, hint, suggested, replaces: None }));
 }
 
 /// Takes what is selected, or what was typed.
@@ -74,6 +75,7 @@ fn take(app: &mut App, entry: Entry) -> Vec<Effect> {
 /// The text is to be typed on, and why.
 pub(super) fn again(app: &mut App, mut entry: Entry, hint: &str) {
     hint.clone_into(&mut entry.hint);
+    entry.suggested = false;
     app.dialog = Some(Dialog::Entry(entry));
 }
 
@@ -102,6 +104,7 @@ pub(super) fn completed(app: &mut App, asked: &str, completion: Completion) {
         [_] => String::new(),
         several => several.join("  "),
     };
+    entry.suggested = false;
     entry.cursor = completion.text.len();
     entry.text = completion.text;
 }
@@ -109,6 +112,10 @@ pub(super) fn completed(app: &mut App, asked: &str, completion: Completion) {
 /// A key that changes the text.
 pub(super) fn edit(app: &mut App, key: Key) -> Vec<Effect> {
     let Some(Dialog::Entry(entry)) = &mut app.dialog else { return Vec::new() };
+    if std::mem::take(&mut entry.suggested) && matches!(key, Key::Char(_)) {
+        entry.text.clear();
+        entry.cursor = 0;
+    }
     let before = entry.text[..entry.cursor].char_indices().next_back().map(|(place, _)| place);
     let after = entry.text[entry.cursor..].chars().next().map(|c| entry.cursor + c.len_utf8());
     match key {

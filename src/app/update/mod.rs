@@ -15,7 +15,7 @@ mod session;
 mod sketch;
 mod values;
 
-use super::geometry::{equilibria, listed, scrolled, values as values_parts};
+use super::geometry::{chooser as chooser_parts, equilibria, listed, scrolled, values as values_parts};
 use super::keymap::{Place, lookup, place};
 use super::wants::wants;
 use super::{App, Effect, Msg};
@@ -51,7 +51,7 @@ pub fn update(app: &mut App, msg: Msg) -> Vec<Effect> {
 fn settle(app: &mut App) {
     let size = app.size;
     app.chooser.chosen = app.chooser.chosen.min(app.chooser.entries.len().saturating_sub(1));
-    let room = usize::from(super::geometry::frame(size).body.rows.saturating_sub(1));
+    let room = usize::from(chooser_parts(size).list.rows.saturating_sub(1));
     app.chooser.from = scrolled(app.chooser.from, app.chooser.chosen, app.chooser.entries.len(), room);
     let Some(study) = &mut app.study else { return };
     study.current = study.current.min(study.slots.len().saturating_sub(1));

@@ -130,7 +130,7 @@ pub(super) fn written(app: &mut App, written: Written) {
 /// The text comes back with what is to be said of it; where something else is open, that is said below.
 fn back(app: &mut App, entry: Option<Entry>, hint: String) {
     match entry.filter(|_| app.dialog.is_none()) {
-        Some(entry) => app.dialog = Some(Dialog::Entry(Entry { hint, ..entry })),
+        Some(entry) => app.dialog = Some(Dialog::Entry(Entry { hint, suggested: false, ..entry })),
         None => app.complain(hint),
     }
 }
