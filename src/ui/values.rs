@@ -208,7 +208,7 @@ fn found(study: &Study, solved: &Solved, page: &mut Page<'_>, area: Area) {
         let id = study.names(study.current).get(place).map_or("", String::as_str);
         let state: Vec<String> = one.state.iter().map(|&x| human(x)).collect();
         let proved = if one.proven && linear.is_some_and(|linear| linear.kind_proven) { "" } else { " (not proved)" };
-        let text = format!("{glyph}{spirals} {id:<3} {}  {}{proved}", state.join(", "), look.word);
+        let text = format!("{glyph}{spirals}{id:<3} {} {}{proved}", state.join(", "), look.word);
         page.text(area, [0, row], &text, Ink::Plain);
         if place == study.chosen {
             page.row(area, row, Ink::Chosen);

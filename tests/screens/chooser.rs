@@ -79,7 +79,7 @@ fn a_path_is_typed_and_completed() {
     bench.shows(&["path of a model:", "Tab completes it"]);
     bench.press("scenarios/h");
     bench.press("<Tab>");
-    bench.shows(&["scenarios/ha", "scenarios/hallowick-bays.yaml  scenarios/harrowmere-moor.yaml"]);
+    bench.shows(&["scenarios/ha", "scenarios/hallowick-bays.yaml, scenarios/harrowmere-moor.yaml"]);
     bench.press("r<Tab>");
     bench.shows(&["path of a model: scenarios/harrowmere-moor.yaml"]);
     bench.press("<Enter>");

@@ -20,8 +20,11 @@ scenarios: {first: {}, second: {values: {k: 0.5*k}}}
 /// The tried value of a parameter, as the list shows it.
 fn tried(bench: &Bench, name: &str) -> Option<String> {
     let text = bench.text();
-    let line = text.lines().find(|line| line[1..].trim_start_matches(' ').starts_with(&format!("{name} ")))?;
-    line[..32].split_whitespace().filter(|word| *word != ">").nth(2).map(str::to_owned)
+    let line = text
+        .lines()
+        .skip(4)
+        .find(|line| line.get(1..).unwrap_or_default().trim_start_matches(' ').starts_with(&format!("{name} ")))?;
+    line.get(..32)?.split_whitespace().filter(|word| *word != ">").nth(2).map(str::to_owned)
 }
 
 #[test]
@@ -60,7 +63,7 @@ fn the_end_of_the_steps_is_said_and_typing_goes_beyond() {
     bench.press(".");
     bench.shows(&["! k = 9 is the upper end that steps go to"]);
     bench.press("t12<Enter>");
-    bench.shows(&["tried 12 kt, 5 in the scenario. Range 1 to 9, and", "this is outside"]);
+    bench.shows(&["tried 12 kt, 5 in", "outside."]);
     bench.press("<Right>");
     bench.shows(&["! k = 12 is the upper end"]);
     bench.press(",");
@@ -92,11 +95,11 @@ fn the_tried_scenario_is_one_of_its_own_and_says_what_changed() {
     for size in SIZES {
         let mut bench = Bench::of(FOOD).at(size).ascii();
         bench.press("v");
-        bench.shows(&["Nothing is tried over \"first\" yet", "> k", "4 equilibria of S, C"]);
+        bench.shows(&["Nothing is tried over \"first\" yet", "> k", "3 equilibria of S, C"]);
         bench.press("t1<Enter>");
-        bench.shows(&["tried: first (3 of 3)", "is lost", "2 equilibria of S, C", "1.000, 0  stable node"]);
+        bench.shows(&["tried: first (3 of 3)", "is lost", "2 equilibria of S, C", "1.000, 0 stable node"]);
         // The coexistence is what matters most, so it comes first.
-        bench.shows(&["Against \"first\": E4 is lost"]);
+        bench.shows(&["Against \"first\": E3 is lost"]);
         bench.press("ef");
         bench.shows(&["first (1 of 3)"]);
         bench.hides(&["tried:"]);
@@ -108,7 +111,7 @@ fn the_tried_scenario_is_one_of_its_own_and_says_what_changed() {
 fn what_only_moves_is_said_to_have_moved() {
     let mut bench = Bench::of(FOOD).at([200, 50]);
     bench.press("vt6<Enter>");
-    bench.shows(&["Against \"first\": E4 moved to 6.000, 4.000;", "moved to 6.000, 0"]);
+    bench.shows(&["Against \"first\": E3 moved to 6.000, 4.000;", "moved to 6.000, 0"]);
     bench.hides(&["is lost", "is new", "is now"]);
     bench.press("g");
     bench.shows(&["Nothing is tried over \"first\" yet", "the tried values are given up"]);
@@ -145,14 +148,14 @@ fn values_lie_over_the_scenario_that_was_looked_at() {
     bench.press("<Right>v");
     bench.shows(&["Nothing is tried over \"second\" yet", "k, a lever: 2.5 kt, not tried."]);
     bench.press("<Right>");
-    bench.shows(&["tried: second (3 of 3)", "tried 2.6 kt, 2.5 in the scenario"]);
+    bench.shows(&["tried: second (3 of 3)", "tried 2.6 kt, 2.5 in"]);
     // Over another scenario, another set; the first is a step back.
     bench.press("eff");
     bench.shows(&["second (2 of 3)"]);
     bench.press("bv<Left>");
-    bench.shows(&["tried: first (3 of 3)", "tried 4.9 kt, 5 in the scenario"]);
+    bench.shows(&["tried: first (3 of 3)", "tried 4.9 kt, 5 in"]);
     bench.press("u");
-    bench.shows(&["tried: second (3 of 3)", "tried 2.6 kt, 2.5 in the scenario"]);
+    bench.shows(&["tried: second (3 of 3)", "tried 2.6 kt, 2.5 in"]);
 }
 
 #[test]

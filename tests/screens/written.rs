@@ -96,8 +96,11 @@ fn a_file_that_is_there_is_replaced_only_when_that_is_said_again() {
     bench.shows(&["is there already; Enter again", "replaces it"]);
     assert_eq!(fs::read_to_string(&path).unwrap(), "old");
     // Another name is another question.
-    bench.press("<Backspace>t<Enter>");
-    bench.shows(&["is there already"]);
+    fs::write(bench.folder().join("there.md"), "old").unwrap();
+    bench.press("<Backspace><Backspace><Backspace>md<Enter>");
+    bench.shows(&["there.md is there already"]);
+    bench.press("<Backspace><Backspace>txt<Enter>");
+    bench.shows(&["there.txt is there already"]);
     assert_eq!(fs::read_to_string(&path).unwrap(), "old");
     bench.press("<Enter>");
     bench.shows(&["written to "]);

@@ -102,7 +102,7 @@ pub(super) fn completed(app: &mut App, asked: &str, completion: Completion) {
     entry.hint = match completion.candidates.as_slice() {
         [] => "nothing begins so".to_owned(),
         [_] => String::new(),
-        several => several.join("  "),
+        several => several.join(", "),
     };
     entry.suggested = false;
     entry.cursor = completion.text.len();
