@@ -4,6 +4,7 @@ use std::sync::Arc;
 
 use super::Source;
 use super::beside::Beside;
+use super::memory::Session;
 use super::sketch::Sketch;
 use crate::analysis::prepare::Prepared;
 use crate::model::{Model, Original, ParameterId};
@@ -81,6 +82,10 @@ pub struct Tried {
     pub redo: Vec<TriedSet>,
     /// The edition of the world that it is to be searched in.
     pub edition: u64,
+    /// The edition that is kept outside, or written to a file.
+    pub kept: u64,
+    /// The edition that was written to a file.
+    pub recorded: u64,
     /// Whether it is to be looked at as soon as it is ready.
     pub follow: bool,
 }
@@ -112,6 +117,8 @@ pub struct Study {
     pub sketch: Sketch,
     /// Values that were tried.
     pub tried: Tried,
+    /// What was tried when the program ran last and is in no file, until something is tried now.
+    pub offer: Option<Session>,
     /// The parameter that is selected where values are tried, by its place in [`Study::parameters`].
     pub parameter: usize,
     /// The first parameter that is shown.
@@ -135,6 +142,7 @@ impl Study {
             beside: Beside::default(),
             sketch: Sketch::default(),
             tried: Tried::default(),
+            offer: None,
             parameter: 0,
             parameters_from: 0,
         }

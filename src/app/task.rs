@@ -104,6 +104,8 @@ pub struct Compared {
     pub scenes: Vec<Scene>,
     /// Names of what was found.
     pub names: Names,
+    /// The names that they have where only these are looked at: what the command that makes the table again gives them.
+    pub own_names: Names,
     /// From the first column to each of the others.
     pub passages: Vec<Option<Passage>>,
     /// Every name, in the order of first appearance.

@@ -16,6 +16,7 @@ use crate::report::sketch::{Picture, View};
 use crate::report::table::{Names, Scene};
 
 use super::clock::Deadline;
+use super::files::from_home;
 use super::models::{COMPILED, Reading, compiled, read};
 use super::solver::{BOXES, names, passages, scene};
 use super::workers::Threads;
@@ -67,7 +68,9 @@ fn compare(world: Arc<World>, scenes: &[Found], ids: Vec<Vec<String>>, budget: f
     let deadline = Deadline::after(budget);
     let mut ways = Ways::new(&world.original.model, &world.prepared);
     let scenes: Vec<Scene> = scenes.iter().map(|found| (*found.0).clone()).collect();
-    let passages = passages(&mut ways, &scenes, &|| (means.stop)() || deadline.is_past());
+    let stop = || (means.stop)() || deadline.is_past();
+    let passages = passages(&mut ways, &scenes, &stop);
+    let own_names = names(&mut ways, &scenes, &stop);
     let mut all: Vec<String> = Vec::new();
     for id in ids.iter().flatten() {
         if !all.contains(id) {
@@ -75,12 +78,12 @@ fn compare(world: Arc<World>, scenes: &[Found], ids: Vec<Vec<String>>, budget: f
         }
     }
     let names = Names { unfollowed: vec![Vec::new(); ids.len()], ids };
-    Compared { world, scenes, names, passages, ids: all }
+    Compared { world, scenes, names, own_names, passages, ids: all }
 }
 
 fn read_source(source: &Source, set: &[(String, f64)], edition: u64) -> Read {
     let reading = match source {
-        Source::File(path) => read(Some(path)),
+        Source::File(path) => read(Some(&from_home(path))),
         Source::Compiled(index) => match COMPILED.get(*index) {
             Some(model) => compiled(model),
             None => return Read::Unreadable("there is no such model".to_owned()),
@@ -106,8 +109,14 @@ fn known(model: &Model, set: &[(String, f64)]) -> Vec<(ParameterId, f64)> {
         _ => None,
     };
     let allowed = |id: ParameterId, value| model.parameters.get(id.0).is_some_and(|one| one.ruled_out(value).is_none());
-    let found = set.iter().filter_map(|(name, value)| Some((find(name)?, *value)));
-    found.filter(|&(id, value)| allowed(id, value)).collect()
+    let mut found: Vec<(ParameterId, f64)> = Vec::new();
+    for (id, value) in set.iter().filter_map(|(name, value)| Some((find(name)?, *value))) {
+        if allowed(id, value) {
+            found.retain(|(other, _)| *other != id);
+            found.push((id, value));
+        }
+    }
+    found
 }
 
 /// The model with the tried scenario at its end, in the search box of the file.

@@ -6,6 +6,7 @@
 mod beside;
 mod chooser;
 mod dialog;
+mod difference;
 mod equilibria;
 mod page;
 mod paint;
@@ -39,12 +40,12 @@ fn body(app: &App, page: &mut Page<'_>, area: Area) {
     match (&app.dialog, app.screen, &app.study) {
         (Some(Dialog::Help { from }), ..) => dialog::help(app, page, area, *from),
         (Some(Dialog::Message { title, lines, from }), ..) => dialog::message(page, area, title, lines, *from),
-        (_, Screen::Chooser, _) | (.., None) => chooser::draw(app, page, area),
-        (_, Screen::Values, Some(study)) => values::draw(app, study, page, area),
+        (_, Screen::Chooser, _) | (.., None) => chooser::draw(app, page),
+        (_, Screen::Values, Some(study)) => values::draw(app, study, page),
         (_, Screen::SideBySide, Some(study)) => beside::draw(app, study, page),
         (_, _, Some(study)) => equilibria::draw(app, study, page),
     }
     if let Some(Dialog::Entry(entry)) = &app.dialog {
-        dialog::entry(page, area, entry);
+        dialog::entry(app, page, area, entry);
     }
 }

@@ -3,5 +3,9 @@
 #![allow(clippy::expect_used, clippy::panic, clippy::unwrap_used, reason = "a test fails by panicking")]
 
 mod bench;
+mod chooser;
+mod kept;
 mod skeleton;
+mod values;
 mod walk;
+mod written;

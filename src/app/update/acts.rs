@@ -1,10 +1,10 @@
 //! What the user wants, on every screen.
 
-use super::{entry, sketch, values};
+use super::{entry, record, session, sketch, values};
 use crate::app::action::{Action, Step};
 use crate::app::beside::ids;
 use crate::app::geometry::{equilibria, listed, values as parts_of_values};
-use crate::app::{App, Dialog, Effect, Purpose, Screen};
+use crate::app::{App, Dialog, Effect, Screen};
 
 /// More numbers than an equilibrium has lines of; the screen shows the last where that is passed.
 const MOST_NUMBERS: usize = 200;
@@ -27,8 +27,11 @@ pub(super) fn act(app: &mut App, action: Action) -> Vec<Effect> {
         }
         Action::Accept => return entry::accept(app),
         Action::Type => entry::begin(app),
-        Action::Write => entry::open(app, Purpose::Write),
-        Action::Record => entry::open(app, Purpose::Record),
+        Action::Write => entry::begin_write(app),
+        Action::Record => return record::begin(app),
+        Action::OpenCopy => record::open_copy(app),
+        Action::TakeUp => session::take_up(app),
+        Action::Complete => return entry::complete(app),
         Action::Reload => reload(app),
         Action::Closer
         | Action::Wider
@@ -86,6 +89,8 @@ fn show(app: &mut App, screen: Screen) {
     app.notice = None;
     app.screen = screen;
     let size = app.size;
+    // What there is may have changed since it was listed.
+    app.chooser.listing = 0;
     if let Some(study) = &mut app.study {
         study.sketch.hold = None;
         // The same equilibrium stays selected from one screen to the other.

@@ -1,18 +1,22 @@
 //! The only function that changes the state. Each answers with what is to be done outside.
 //!
 //! `acts` does what the user wants on every screen, `sketch` what concerns the sketch, `values` tried values, `entry` what is
-//! typed, `arrivals` what comes from outside. [`update()`] restores at its end what always holds: whatever is selected is
+//! typed, `record` what is written, `chooser` which models there are, `arrivals` what comes from outside, `reread` a file
+//! that has changed, `session` what outlives the program. [`update()`] restores at its end what always holds: whatever is selected is
 //! there and in sight; and asks for what the screen needs.
 
 mod acts;
 mod arrivals;
+mod chooser;
 mod entry;
+mod record;
 mod reread;
+mod session;
 mod sketch;
 mod values;
 
 use super::beside::{ids, parts, shown};
-use super::geometry::{equilibria, listed, scrolled, values as values_parts};
+use super::geometry::{chooser as chooser_parts, equilibria, listed, scrolled, values as values_parts};
 use super::keymap::{Place, lookup, place};
 use super::wants::wants;
 use super::{App, Effect, Msg};
@@ -36,6 +40,8 @@ pub fn update(app: &mut App, msg: Msg) -> Vec<Effect> {
         Msg::Resumed => vec![Effect::Redraw],
         other => arrivals::arrive(app, other),
     };
+    effects.extend(session::keep(app));
+    effects.extend(chooser::list(app));
     settle(app);
     let wanted = wants(app);
     effects.extend(app.desk.demand(&wanted));
@@ -46,7 +52,7 @@ pub fn update(app: &mut App, msg: Msg) -> Vec<Effect> {
 fn settle(app: &mut App) {
     let size = app.size;
     app.chooser.chosen = app.chooser.chosen.min(app.chooser.entries.len().saturating_sub(1));
-    let room = usize::from(super::geometry::frame(size).body.rows.saturating_sub(1));
+    let room = usize::from(chooser_parts(size).list.rows.saturating_sub(1));
     app.chooser.from = scrolled(app.chooser.from, app.chooser.chosen, app.chooser.entries.len(), room);
     let Some(study) = &mut app.study else { return };
     study.current = study.current.min(study.slots.len().saturating_sub(1));

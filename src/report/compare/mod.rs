@@ -35,7 +35,7 @@ pub use quantity::{Measured, Quantity};
 pub use text::text;
 pub use words::difference;
 
-use super::table::{Scene, Solved, Table};
+use super::table::{Form, Page, Scene, Solved, Table, pretty};
 use crate::analysis::passage::{Fate, Passage};
 use quantity::quantities;
 
@@ -99,6 +99,17 @@ impl Entry {
     /// Whether its fate is that of one here, followed back to the reference.
     pub fn is_back(&self) -> bool {
         self.place.is_some() && self.change != Change::Same
+    }
+}
+
+/// A comparison in a form.
+pub fn written(comparison: &Comparison<'_>, form: Form, page: Page) -> String {
+    match form {
+        Form::Text => text(comparison, page),
+        Form::Csv => csv(comparison, page.style),
+        Form::Markdown => markdown(comparison, page),
+        Form::Json => pretty(&json(comparison), page.style),
+        Form::Latex => latex(comparison, page),
     }
 }
 
