@@ -9,9 +9,10 @@ use crate::analysis::passage::Ways;
 use crate::analysis::paths::follow;
 use crate::analysis::prepare::Prepared;
 use crate::app::study::{TriedSet, World};
-use crate::app::task::Painting;
+use crate::app::task::{Painting, Release};
 use crate::app::{Answer, Read, Source, Task};
 use crate::model::Original;
+use crate::report::course::Course;
 use crate::report::sketch::{Picture, View};
 
 use super::clock::Deadline;
@@ -55,6 +56,7 @@ pub fn perform(task: Task, means: &Means<'_>) -> Answer {
             let subject = world.prepared.subject(&world.original.model, scenario).ok();
             Answer::Followed(subject.map(|mut subject| Arc::new(follow(&mut subject, &start, until, &means.stop))))
         }
+        Task::Run(release) => Answer::Ran(run(&release, means).map(Arc::new)),
     }
 }
 
@@ -88,6 +90,16 @@ fn prepare(world: &World, tried: &TriedSet, edition: u64) -> Result<Arc<World>, 
         }
         Err(found) => Err(found.first().map_or_else(String::new, |problem| problem.message.clone())),
     }
+}
+
+fn run(release: &Release, means: &Means<'_>) -> Option<Course> {
+    let Release { world, scene, equilibrium, start, until } = release;
+    let solved = scene.solved()?;
+    let state = &solved.equilibria.list.get(*equilibrium)?.state;
+    let linear = solved.assessment.equilibria.get(*equilibrium).and_then(|assessed| assessed.linear.as_ref().ok());
+    let mut subject = world.prepared.subject(&world.original.model, scene.0.scenario).ok()?;
+    let path = follow(&mut subject, start, *until, &means.stop);
+    Some(Course::new(&path, state, linear, subject.step()))
 }
 
 fn paint(painting: &Painting) -> Option<Arc<Picture>> {

@@ -6,8 +6,11 @@
 mod chooser;
 mod dialog;
 mod equilibria;
+mod interactions;
+mod knock;
 mod page;
 mod paint;
+mod single;
 mod sketch;
 mod text;
 mod values;
@@ -40,6 +43,8 @@ fn body(app: &App, page: &mut Page<'_>, area: Area) {
         (Some(Dialog::Message { title, lines, from }), ..) => dialog::message(page, area, title, lines, *from),
         (_, Screen::Chooser, _) | (.., None) => chooser::draw(app, page, area),
         (_, Screen::Values, Some(study)) => values::draw(app, study, page, area),
+        (_, Screen::Interactions, Some(study)) => interactions::draw(app, study, page),
+        (_, Screen::Knock, Some(study)) => knock::draw(app, study, page),
         (_, _, Some(study)) => equilibria::draw(app, study, page),
     }
     if let Some(Dialog::Entry(entry)) = &app.dialog {

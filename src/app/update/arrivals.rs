@@ -99,6 +99,8 @@ fn again(app: &mut App, world: &Arc<World>) {
     study.current = study.slots.iter().position(|slot| Some(slot.name()) == current.as_deref()).unwrap_or(0);
     if is_alike {
         study.sketch = old.sketch.clone();
+        study.interacting = old.interacting;
+        study.knock = old.knock;
     }
     study.names = study.slots.iter().map(|slot| names_before(&old, slot.name())).collect();
     study.choose_named(chosen.as_deref());

@@ -1,12 +1,14 @@
 //! The only function that changes the state. Each answers with what is to be done outside.
 //!
-//! `acts` does what the user wants on every screen, `sketch` what concerns the sketch, `values` tried values, `entry` what is
-//! typed, `arrivals` what comes from outside. [`update()`] restores at its end what always holds: whatever is selected is
+//! `acts` does what the user wants on every screen, `sketch` what concerns the sketch, `interactions` and `knock` what concerns
+//! those, `values` tried values, `entry` what is typed, `arrivals` what comes from outside. [`update()`] restores at its end what always holds: whatever is selected is
 //! there and in sight; and asks for what the screen needs.
 
 mod acts;
 mod arrivals;
 mod entry;
+mod interactions;
+mod knock;
 mod sketch;
 mod values;
 
@@ -53,4 +55,6 @@ fn settle(app: &mut App) {
     study.from = scrolled(study.from, study.chosen, count, listed(equilibria(size, count).list));
     let parameters = study.model().parameters.len();
     study.parameter = study.parameter.min(parameters.saturating_sub(1));
+    interactions::settle(app);
+    knock::settle(app);
 }

@@ -1,0 +1,34 @@
+//! What happens after a knock? What came of it in words, and the path of every species with its linear prediction.
+
+use super::paint::Page;
+use super::single::{below, heading, none};
+use crate::app::geometry::Area;
+use crate::app::interactions::said;
+use crate::app::knock::{blow, known, parts, room, words};
+use crate::app::{App, Study};
+use crate::report::course::{bands, drawing, signs};
+use crate::report::grid::Ink;
+
+/// The whole screen.
+pub(super) fn draw(app: &App, study: &Study, page: &mut Page<'_>) {
+    let parts = parts(app.size);
+    let (Some(selected), Some(blow)) = (study.selected(), blow(study)) else {
+        let body = Area { rows: parts.heading.rows + parts.sentence.rows, ..parts.heading };
+        none(study, page, body);
+        return;
+    };
+    heading(&selected.label(study, page.style), &blow.words, page, parts.heading);
+    let Some(course) = known(app, study) else {
+        page.text(parts.sentence, [0, 0], "Following the path.", Ink::Faint);
+        return;
+    };
+    page.words(parts.sentence, &words(study, course, page.style).join(" "), Ink::Plain);
+    page.grid(parts.drawing, &drawing(course, selected.model(), study.knock.from, room(app.size), page.style));
+    let [seen, all] = bands(course, room(app.size));
+    let mut legend = said(&signs(course, page.style));
+    if seen < all {
+        let from = study.knock.from;
+        legend += &format!("   species {} to {} of {all}", from + 1, from + seen);
+    }
+    below(&legend, page, parts.legend);
+}
