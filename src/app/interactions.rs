@@ -35,37 +35,60 @@ pub struct Parts {
     pub sentence: Area,
     /// The table; of direct effects where both are shown.
     pub table: Area,
-    /// Net effects beside, where both are shown.
+    /// Net effects beside or below, where both are shown.
     pub beside: Option<Area>,
     /// The signs.
     pub legend: Area,
 }
 
+/// How the tables lie.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Layout {
+    /// One of the two.
+    One,
+    /// Net effects on the right of direct ones.
+    Beside,
+    /// Net effects below direct ones.
+    Below,
+}
+
 /// Columns from which on two tables side by side have room for their titles.
 const ROOM_FOR_BOTH: u16 = 174;
 
-/// Where things stand, with one table or with both side by side.
-pub fn parts(size: Size, has_both: bool) -> Parts {
+/// Where things stand.
+pub fn parts(size: Size, layout: Layout) -> Parts {
     let (heading, rest) = frame(size).body.top(1);
-    let (sentence, rest) = rest.top(if size.columns < 100 { 4 } else { 2 });
+    let lines = if size.columns < 80 {
+        5
+    } else if size.columns < 100 {
+        4
+    } else {
+        2
+    };
+    let (sentence, rest) = rest.top(lines);
     let (legend, rest) = rest.bottom(1);
-    if !has_both {
-        return Parts { heading, sentence, table: rest, beside: None, legend };
-    }
-    let (left, right) = rest.left(rest.columns / 2);
-    let table = Area { columns: left.columns.saturating_sub(2), ..left };
-    Parts { heading, sentence, table, beside: Some(right), legend }
+    let (table, beside) = match layout {
+        Layout::One => (rest, None),
+        Layout::Beside => {
+            let (left, right) = rest.left(rest.columns / 2);
+            (Area { columns: left.columns.saturating_sub(2), ..left }, Some(right))
+        }
+        Layout::Below => {
+            let (upper, lower) = rest.top(rest.rows / 2);
+            (upper, Some(lower))
+        }
+    };
+    Parts { heading, sentence, table, beside, legend }
 }
 
 /// Where things stand for what is selected: both tables where there is room for the whole of each.
 pub fn parts_of(size: Size, study: &Study) -> Parts {
-    let both = parts(size, true);
-    let fits = || {
-        let (selected, direct) = (study.selected()?, table(study, Effects::Direct)?.ok()?);
-        let [_, columns] = visible(&direct, selected.model(), room(both.table));
-        Some(columns >= direct.species.len())
-    };
-    if size.columns >= ROOM_FOR_BOTH && fits().unwrap_or(false) { both } else { parts(size, false) }
+    let one = parts(size, Layout::One);
+    let (Some(selected), Some(Ok(table))) = (study.selected(), table(study, Effects::Direct)) else { return one };
+    let all = table.species.len();
+    let is_whole = |parts: &Parts| visible(&table, selected.model(), room(parts.table)).iter().all(|&seen| seen >= all);
+    let wide = (size.columns >= ROOM_FOR_BOTH).then(|| parts(size, Layout::Beside));
+    wide.into_iter().chain([parts(size, Layout::Below)]).find(is_whole).unwrap_or(one)
 }
 
 /// Columns and rows of a table in an area.
@@ -102,7 +125,7 @@ pub fn text(app: &App) -> Option<String> {
         match table(study, effects)? {
             Ok(table) => {
                 lines.push(interactions::text(&table, selected.model(), app.style).trim_end().to_owned());
-                lines.push(said(&signs(&table)));
+                lines.push(said(&signs(&[&table])));
             }
             Err(reason) => lines.push(reason.to_owned()),
         }

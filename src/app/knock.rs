@@ -85,6 +85,15 @@ pub struct Blow {
     pub state: Vec<f64>,
     /// What it was, in words without a capital; harmless only where it is shown.
     pub words: String,
+    /// By how much abundances change, where that is the same share of each that is hit.
+    pub share: Option<String>,
+}
+
+impl Blow {
+    /// The words, and where there is one the share.
+    pub fn at_length(&self) -> String {
+        self.share.as_ref().map_or_else(|| self.words.clone(), |share| format!("{} ({share})", self.words))
+    }
 }
 
 /// Everybody that a knock can hit at the selected equilibrium, in the order that one goes round: all that are there, each
@@ -113,28 +122,20 @@ pub fn blow(study: &Study) -> Option<Blow> {
     let selected = study.selected()?;
     let state = &selected.equilibrium.state;
     let &(change, said) = STEPS.get(study.knock.step)?;
-    let percent = format!("({:+.0} %)", 100.0 * change);
-    match hit(study)? {
-        Hit::Point => Some(Blow { state: start(study)?, words: "from the point on the sketch".to_owned() }),
-        Hit::All => Some(Blow {
-            state: knocked(state, None, change),
-            words: match said {
-                Said::Taken(part) => format!("{part} of each species taken {percent}"),
-                Said::Made(what) => format!("each species {what} {percent}"),
-            },
-        }),
-        Hit::One(species) => {
-            let name = &selected.model().species.get(species)?.name;
-            if !selected.equilibrium.has(species) {
-                return little(&selected, species);
-            }
-            let words = match said {
-                Said::Taken(part) => format!("{part} of {name} taken {percent}"),
-                Said::Made(what) => format!("{name} {what} {percent}"),
-            };
-            Some(Blow { state: knocked(state, Some(species), change), words })
+    let share = format!("{:+.0} %", 100.0 * change);
+    let (who, whom) = match hit(study)? {
+        Hit::Point => {
+            return Some(Blow { state: start(study)?, words: "from the point on the sketch".to_owned(), share: None });
         }
-    }
+        Hit::One(species) if !selected.equilibrium.has(species) => return little(&selected, species),
+        Hit::One(species) => (selected.model().species.get(species)?.name.as_str(), Some(species)),
+        Hit::All => ("all", None),
+    };
+    let words = match said {
+        Said::Taken(part) => format!("{part} of {who} taken"),
+        Said::Made(what) => format!("{who} {what}"),
+    };
+    Some(Blow { state: knocked(state, whom, change), words, share: Some(share) })
 }
 
 /// A little of an absent species comes in.
@@ -147,7 +148,8 @@ fn little(selected: &Selected<'_>, species: usize) -> Option<Blow> {
     let mut state = selected.equilibrium.state.clone();
     *state.get_mut(species)? = amount.min(bound.upper);
     let unit = one.unit.as_ref().map_or(String::new(), |unit| format!(" {}", unit.value));
-    Some(Blow { state, words: format!("{}{unit} of {} brought in", human(amount), one.name) })
+    let words = format!("{}{unit} of {} brought in", human(amount), one.name);
+    Some(Blow { state, words, share: None })
 }
 
 /// The path to be followed; `None` where nothing is selected.
@@ -161,6 +163,18 @@ pub fn run(study: &Study) -> Option<Task> {
     let (world, scene) = (Arc::clone(selected.world), Found(Arc::clone(selected.scene)));
     let start = blow(study)?.state;
     Some(Task::Run(Release { world, scene, equilibrium: selected.place, start, until }))
+}
+
+/// Why it makes no difference how hard one knocks; `None` where it does.
+pub fn is_fixed(study: &Study) -> Option<&'static str> {
+    let selected = study.selected()?;
+    match hit(study)? {
+        Hit::Point => Some("the path starts from the point; Tab chooses who is hit"),
+        Hit::One(species) if !selected.equilibrium.has(species) => {
+            Some("as little as possible comes in of who is absent")
+        }
+        Hit::All | Hit::One(_) => None,
+    }
 }
 
 /// What came of it, where that is known.
@@ -207,10 +221,29 @@ pub fn words(study: &Study, course: &Course, style: Style) -> Vec<String> {
     let list = &selected.solved.equilibria.list;
     let end = course::end(course, list).filter(|&place| place != selected.place);
     if let Some(name) = end.and_then(|place| study.names(study.current).get(place)) {
-        // Where it ends matters more than how good the prediction was.
-        said.insert(1.min(said.len()), format!("At the end within 10 % of {name} (numerical)."));
+        // Where it ends matters more than all else.
+        said.insert(0, format!("At the end within 10 % of {name} (numerical)."));
     }
+    said.extend(could_come_in(study, &selected).map(|text| clean(&text, style)));
     said
+}
+
+/// Species that are named as able to come in.
+const MOST_NAMED: usize = 3;
+
+/// Who could upset the state but has no part in the path; `None` where nobody could.
+fn could_come_in(study: &Study, selected: &Selected<'_>) -> Option<String> {
+    let rates = selected.assessed.measures.invasion.iter();
+    let able: Vec<usize> = rates.filter(|(_, rate)| rate.is_some_and(|rate| rate > 0.0)).map(|(id, _)| id.0).collect();
+    let is_on_the_way = matches!(hit(study), Some(Hit::Point)) || able.iter().any(|&i| hit(study) == Some(Hit::One(i)));
+    let names = able.iter().filter_map(|&i| selected.model().species.get(i)).map(|one| one.name.as_str());
+    let who = match able.len() {
+        _ if is_on_the_way => return None,
+        0 => return None,
+        1..=MOST_NAMED => names.collect::<Vec<_>>().join(", "),
+        count => format!("{count} species"),
+    };
+    Some(format!("Left out is who could come in: {who}; Tab brings them in one by one."))
 }
 
 /// Columns of a drawing that is saved.
@@ -224,7 +257,7 @@ pub fn text(app: &App) -> Option<String> {
     let selected = study.selected()?;
     let course = known(app, study)?;
     let mut lines = selected.heading(study, app.style);
-    lines.push(clean(&format!("After a knock: {}.", blow(study)?.words), app.style));
+    lines.push(clean(&format!("After a knock: {}.", blow(study)?.at_length()), app.style));
     lines.extend(words(study, course, app.style));
     let all = bands(course, room(app.size))[1];
     let size = sketch::Size { columns: SAVED_COLUMNS, rows: all.max(1) * SAVED_ROWS };

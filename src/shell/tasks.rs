@@ -6,13 +6,13 @@ use std::sync::Arc;
 
 use crate::analysis::equilibria::{Budget, Progress};
 use crate::analysis::passage::Ways;
-use crate::analysis::paths::follow;
+use crate::analysis::paths::{Ended, follow};
 use crate::analysis::prepare::Prepared;
 use crate::app::study::{TriedSet, World};
 use crate::app::task::{Painting, Release};
 use crate::app::{Answer, Read, Source, Task};
 use crate::model::Original;
-use crate::report::course::Course;
+use crate::report::course::{Course, arrival, until_after};
 use crate::report::sketch::{Picture, View};
 
 use super::clock::Deadline;
@@ -92,14 +92,27 @@ fn prepare(world: &World, tried: &TriedSet, edition: u64) -> Result<Arc<World>, 
     }
 }
 
+/// How many times as long a path is followed to see where it goes to.
+const PATIENCE: f64 = 8.0;
+
 fn run(release: &Release, means: &Means<'_>) -> Option<Course> {
     let Release { world, scene, equilibrium, start, until } = release;
     let solved = scene.solved()?;
     let state = &solved.equilibria.list.get(*equilibrium)?.state;
     let linear = solved.assessment.equilibria.get(*equilibrium).and_then(|assessed| assessed.linear.as_ref().ok());
     let mut subject = world.prepared.subject(&world.original.model, scene.0.scenario).ok()?;
-    let path = follow(&mut subject, start, *until, &means.stop);
-    Some(Course::new(&path, state, linear, subject.step()))
+    let step = subject.step();
+    let list = &solved.equilibria.list;
+    let mut path = follow(&mut subject, start, *until, &means.stop);
+    let mut there = arrival(&path, list, step.is_some());
+    if there.is_none() && path.ended == Ended::InTime {
+        let long = follow(&mut subject, start, PATIENCE * until, &means.stop);
+        there = arrival(&long, list, step.is_some());
+        // Where it goes nowhere in that time either, a short path is seen better.
+        path = if there.is_some() { long } else { path };
+    }
+    let path = until_after(path, there.unwrap_or(0.0));
+    Some(Course::new(&path, state, linear, step))
 }
 
 fn paint(painting: &Painting) -> Option<Arc<Picture>> {

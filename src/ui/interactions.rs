@@ -1,4 +1,4 @@
-//! Who acts on whom? What is telling in words, and the table of direct or of net effects, or both side by side.
+//! Who acts on whom? What is telling in words, and the table of direct or of net effects, or both.
 
 use super::paint::Page;
 use super::single::{below, heading, none};
@@ -22,7 +22,7 @@ pub(super) fn draw(app: &App, study: &Study, page: &mut Page<'_>) {
     };
     heading(&selected.label(study, page.style), who, page, parts.heading);
     page.words(parts.sentence, &words(&selected, page.style).join(" "), Ink::Plain);
-    let mut used = Vec::new();
+    let mut shown = Vec::new();
     let first = if parts.beside.is_some() { Effects::Direct } else { study.interacting.effects };
     for (area, effects) in [(Some(parts.table), first), (parts.beside, Effects::Net)] {
         let (Some(area), Some(table)) = (area, table(study, effects)) else { continue };
@@ -30,16 +30,12 @@ pub(super) fn draw(app: &App, study: &Study, page: &mut Page<'_>) {
             Ok(table) => {
                 let from = study.interacting.from;
                 page.grid(area, &drawing(&table, selected.model(), from, room(area), page.style));
-                signs(&table).into_iter().for_each(|sign| {
-                    if !used.contains(&sign) {
-                        used.push(sign);
-                    }
-                });
+                shown.push(table);
             }
             Err(reason) => {
                 page.words(area, reason, Ink::Undecided);
             }
         }
     }
-    below(&said(&used), page, parts.legend);
+    below(&said(&signs(&shown.iter().collect::<Vec<_>>())), page, parts.legend);
 }

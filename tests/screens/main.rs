@@ -3,4 +3,7 @@
 #![allow(clippy::expect_used, clippy::panic, clippy::unwrap_used, reason = "a test fails by panicking")]
 
 mod bench;
+mod interactions;
+mod knock;
 mod skeleton;
+mod texts;

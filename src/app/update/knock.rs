@@ -2,7 +2,7 @@
 
 use super::acts::stepped;
 use crate::app::action::{Action, Direction, Step};
-use crate::app::knock::{STEPS, hit, known, room, round};
+use crate::app::knock::{STEPS, hit, is_fixed, known, room, round};
 use crate::app::{App, Screen};
 use crate::report::course::bands;
 
@@ -16,6 +16,10 @@ pub(super) fn act(app: &mut App, action: Action) {
             if let Some(next) = place.and_then(|place| round.get((place + 1) % round.len())) {
                 study.knock.hit = *next;
             }
+        }
+        Action::Knock(_) if is_fixed(study).is_some() => {
+            let reason = is_fixed(study).unwrap_or_default();
+            app.say(reason);
         }
         Action::Knock(step) => study.knock.step = stepped(study.knock.step, STEPS.len(), 1, step),
         Action::Scroll(direction) => {

@@ -154,6 +154,30 @@ pub fn end(course: &Course, list: &[Equilibrium]) -> Option<usize> {
     all.min_by(|a, b| a.1.total_cmp(&b.1)).map(|(place, _)| place)
 }
 
+/// From when on a path is within 1 % of one of these equilibria for good; `None` where it is near none at its end.
+pub fn arrival(path: &Path, list: &[Equilibrium], is_map: bool) -> Option<f64> {
+    let last = path.states.last()?;
+    let there = |one: &Equilibrium| {
+        let sizes = sizes(path, &one.state);
+        let off = |state: &[f64]| deviation(&one.state, &sizes, state);
+        (off(last) <= HUNDREDTH).then(|| entry(path, is_map, &|state| off(state) <= HUNDREDTH))
+    };
+    list.iter().filter_map(there).min_by(f64::total_cmp)
+}
+
+/// A path until a little after a time; whole where that is its start.
+#[must_use]
+pub fn until_after(mut path: Path, time: f64) -> Path {
+    let until = AFTERWARDS * time;
+    if until > 0.0 {
+        let kept = path.times.iter().take_while(|&&time| time <= until).count() + 1;
+        path.times.truncate(kept);
+        path.states.truncate(kept);
+        path.lost.retain(|(_, when)| *when <= path.times.last().copied().unwrap_or(0.0));
+    }
+    path
+}
+
 /// By what a deviation of each species is measured.
 fn sizes(path: &Path, equilibrium: &[f64]) -> Vec<f64> {
     let highest = |i: usize| path.states.iter().filter_map(|state| state.get(i)).fold(0.0, |high: f64, x| high.max(*x));

@@ -69,10 +69,11 @@ pub fn text(table: &Interactions, model: &Model, style: Style) -> String {
     drawing(table, model, [0, 0], size, style).lines(false).iter().map(|line| format!("{line}\n")).collect()
 }
 
-/// The signs of the table, each with its meaning in a word or two.
-pub fn signs(table: &Interactions) -> Vec<(String, String)> {
-    let has = |sign: Sign| table.entries.iter().any(|effect| effect.sign == sign);
-    let is_mixed = table.effects == Effects::Direct && table.entries.iter().any(is_bracketed);
+/// The signs of tables that are shown together, each with its meaning in a word or two.
+pub fn signs(tables: &[&Interactions]) -> Vec<(String, String)> {
+    let has = |sign: Sign| tables.iter().flat_map(|table| &table.entries).any(|effect| effect.sign == sign);
+    let mixed = |table: &&&Interactions| table.effects == Effects::Direct && table.entries.iter().any(is_bracketed);
+    let is_mixed = tables.iter().find(mixed).is_some();
     let all = [
         (has(Sign::Positive), "+", "more"),
         (has(Sign::Negative), "-", "less"),
@@ -131,11 +132,11 @@ fn title(table: &Interactions, model: &Model, room: usize) -> String {
     let [long, short] = match (table.effects, &model.time) {
         (Effects::Direct, TimeKind::Continuous) => [
             format!("Direct effects: on the growth of the row, per {unit}, of one more of the column"),
-            format!("Direct: on the row's growth per {unit}, of one more of the column"),
+            format!("Direct: on the row's growth per {unit}, of one more of column"),
         ],
         (Effects::Direct, TimeKind::Discrete { .. }) => [
             "Direct effects: on the next state of the row, of one more of the column".to_owned(),
-            "Direct: on the row's next state, of one more of the column".to_owned(),
+            "Direct: on the row's next state, of one more of column".to_owned(),
         ],
         (Effects::Net, TimeKind::Continuous) => [
             format!("Net effects (numerical): lasting answer of the row to one more per {unit} of the column"),

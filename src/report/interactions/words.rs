@@ -50,7 +50,7 @@ fn said(first: &str, second: &str, style: Style) -> Vec<String> {
 fn lasts(stable: Option<bool>) -> &'static str {
     match stable {
         Some(true) => "",
-        Some(false) => "The state is not stable: the long run says where the state moves, not where paths go.",
+        Some(false) => "Not stable: the long run says where the state moves, not where paths go.",
         None => "Whether the state lasts is open: the long run says where the state moves.",
     }
 }
@@ -143,7 +143,7 @@ impl Pair {
             ),
             Surprise::Indirect => {
                 format!(
-                    "{at_once}, yet adding it steadily {raises} {row} in the long run (numerical); taking works the other way."
+                    "{at_once}, yet adding {column} steadily {raises} {row} in the long run (numerical); taking works the other way."
                 )
             }
             Surprise::None => {
@@ -178,7 +178,7 @@ fn at_once(model: &Model, direct: &Interactions, row: usize, column: usize) -> S
     match effect.sign {
         Sign::Positive => format!("One more of {acts} raises {of} at once ({sure})"),
         Sign::Negative => format!("One more of {acts} lowers {of} at once ({sure})"),
-        Sign::Zero => format!("{acts} does not act on {answers} at once ({sure})"),
+        Sign::Zero => format!("One more of {acts} does not change the {what} of {answers} at once ({sure})"),
         Sign::Undecided => format!("What one more of {acts} does to {of} at once is undecided"),
     }
 }
