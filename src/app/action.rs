@@ -110,6 +110,10 @@ pub enum Action {
     Complete,
     /// Another kind of the same screen: what the interactions show, what the knock hits.
     Other,
-    /// A stronger or weaker knock.
+    /// A knock that leaves more, or less.
     Knock(Step),
+    /// Absent species among the interactions, or only those that are there.
+    Absent,
+    /// To another part of what is shown.
+    Scroll(Direction),
 }

@@ -7,6 +7,7 @@ use super::{Read, Source};
 use crate::analysis::field::{Scale, Slice, Window};
 use crate::analysis::passage::Passage;
 use crate::analysis::paths::Path;
+use crate::report::course::Course;
 use crate::report::sketch::{Picture, Plot};
 use crate::report::table::{Names, Scene, Solved};
 
@@ -59,6 +60,23 @@ pub enum Task {
         /// For how long, in time units; backwards where negative.
         until: f64,
     },
+    /// Follows the path after a knock, and compares it with what the linear part predicts.
+    Run(Release),
+}
+
+/// A path from beside an equilibrium.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Release {
+    /// The model.
+    pub world: Arc<World>,
+    /// What was found.
+    pub scene: Found,
+    /// The place of the equilibrium in the list of those found.
+    pub equilibrium: usize,
+    /// The state of all species at the start.
+    pub start: Vec<f64>,
+    /// For how long, in time units.
+    pub until: f64,
 }
 
 /// A sketch to be computed.
@@ -129,4 +147,6 @@ pub enum Answer {
     Painted(Option<Arc<Picture>>),
     /// Of following.
     Followed(Option<Arc<Path>>),
+    /// Of following after a knock; nothing where the scenario has no equations.
+    Ran(Option<Arc<Course>>),
 }

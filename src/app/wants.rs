@@ -31,6 +31,9 @@ pub fn wants(app: &App) -> Vec<Task> {
         Screen::SideBySide => tasks.extend(side_by_side(app, study)),
         Screen::Chooser | Screen::Interactions | Screen::Knock => {}
     }
+    if app.screen == Screen::Knock {
+        tasks.extend(super::knock::run(study));
+    }
     tasks
 }
 
@@ -133,17 +136,23 @@ fn paths(study: &Study) -> Vec<Task> {
 
 /// The path from the point, or to it.
 pub fn path(study: &Study, backwards: bool) -> Option<Task> {
-    let point = study.sketch.point?;
+    let start = start(study)?;
     let (world, scene) = study.slot()?.found.clone()?;
-    let solved = scene.outcome.as_ref().ok()?;
+    let horizon = horizon(scene.outcome.as_ref().ok()?);
+    Some(Task::Follow { world, scenario: scene.scenario, start, until: if backwards { -horizon } else { horizon } })
+}
+
+/// The state of all species at the point; `None` where there is none.
+pub fn start(study: &Study) -> Option<Vec<f64>> {
+    let point = study.sketch.point?;
+    let solved = study.solved()?;
     let slice = slice(study, solved, axes(study), study.chosen);
     let mut start = slice.held.clone();
     *start.get_mut(slice.x)? = point[0];
     if let Some(y) = slice.y {
         *start.get_mut(y)? = point[1];
     }
-    let horizon = horizon(solved);
-    Some(Task::Follow { world, scenario: scene.scenario, start, until: if backwards { -horizon } else { horizon } })
+    Some(start)
 }
 
 /// Return times that a path is followed for: by then what fades has faded to e⁻²⁰.

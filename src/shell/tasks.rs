@@ -6,12 +6,13 @@ use std::sync::Arc;
 
 use crate::analysis::equilibria::{Budget, Progress};
 use crate::analysis::passage::Ways;
-use crate::analysis::paths::follow;
+use crate::analysis::paths::{Ended, follow};
 use crate::analysis::prepare::Prepared;
 use crate::app::study::{TriedSet, World};
-use crate::app::task::{Compared, Found, Painting};
+use crate::app::task::{Compared, Found, Painting, Release};
 use crate::app::{Answer, Read, Source, Task};
 use crate::model::{Model, Name, Original, ParameterId};
+use crate::report::course::{Course, arrival, until_after};
 use crate::report::sketch::{Picture, View};
 use crate::report::table::{Names, Scene};
 
@@ -60,6 +61,7 @@ pub fn perform(task: Task, means: &Means<'_>) -> Answer {
             let subject = world.prepared.subject(&world.original.model, scenario).ok();
             Answer::Followed(subject.map(|mut subject| Arc::new(follow(&mut subject, &start, until, &means.stop))))
         }
+        Task::Run(release) => Answer::Ran(run(&release, means).map(Arc::new)),
     }
 }
 
@@ -134,6 +136,29 @@ fn prepare(world: &World, tried: &TriedSet, edition: u64) -> Result<Arc<World>, 
         }
         Err(found) => Err(found.first().map_or_else(String::new, |problem| problem.message.clone())),
     }
+}
+
+/// How many times as long a path is followed to see where it goes to.
+const PATIENCE: f64 = 8.0;
+
+fn run(release: &Release, means: &Means<'_>) -> Option<Course> {
+    let Release { world, scene, equilibrium, start, until } = release;
+    let solved = scene.solved()?;
+    let state = &solved.equilibria.list.get(*equilibrium)?.state;
+    let linear = solved.assessment.equilibria.get(*equilibrium).and_then(|assessed| assessed.linear.as_ref().ok());
+    let mut subject = world.prepared.subject(&world.original.model, scene.0.scenario).ok()?;
+    let step = subject.step();
+    let list = &solved.equilibria.list;
+    let mut path = follow(&mut subject, start, *until, &means.stop);
+    let mut there = arrival(&path, list, step.is_some());
+    if there.is_none() && path.ended == Ended::InTime {
+        let long = follow(&mut subject, start, PATIENCE * until, &means.stop);
+        there = arrival(&long, list, step.is_some());
+        // Where it goes nowhere in that time either, a short path is seen better.
+        path = if there.is_some() { long } else { path };
+    }
+    let path = until_after(path, there.unwrap_or(0.0));
+    Some(Course::new(&path, state, linear, step))
 }
 
 fn paint(painting: &Painting) -> Option<Arc<Picture>> {

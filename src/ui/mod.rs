@@ -8,8 +8,11 @@ mod chooser;
 mod dialog;
 mod difference;
 mod equilibria;
+mod interactions;
+mod knock;
 mod page;
 mod paint;
+mod single;
 mod sketch;
 mod text;
 mod values;
@@ -43,6 +46,8 @@ fn body(app: &App, page: &mut Page<'_>, area: Area) {
         (_, Screen::Chooser, _) | (.., None) => chooser::draw(app, page),
         (_, Screen::Values, Some(study)) => values::draw(app, study, page),
         (_, Screen::SideBySide, Some(study)) => beside::draw(app, study, page),
+        (_, Screen::Interactions, Some(study)) => interactions::draw(app, study, page),
+        (_, Screen::Knock, Some(study)) => knock::draw(app, study, page),
         (_, _, Some(study)) => equilibria::draw(app, study, page),
     }
     if let Some(Dialog::Entry(entry)) = &app.dialog {

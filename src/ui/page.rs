@@ -1,7 +1,7 @@
 //! What all screens share: the heading, the line on what happens, the keys that matter.
 
 use super::paint::Page;
-use crate::app::action::{Action, Step};
+use crate::app::action::{Action, Direction, Step};
 use crate::app::geometry::{Area, SMALLEST};
 use crate::app::keymap::{Place, key_of, place};
 use crate::app::{App, Screen, Study};
@@ -110,6 +110,30 @@ fn hints(place: Place) -> Vec<(Action, &'static str)> {
             (Action::Record, "new scenario"),
             (Action::Write, "write"),
             (Action::Show(Screen::Equilibria), "equilibria"),
+            leave,
+        ],
+        Place::On(Screen::Interactions) => vec![
+            help,
+            (Action::Step(Step::On), "next"),
+            (Action::Other, "direct or net"),
+            (Action::Absent, "absent too"),
+            (Action::Scroll(Direction::Right), "columns"),
+            (Action::Scroll(Direction::Down), "rows"),
+            (Action::Scenario(Step::On), "scenario"),
+            (Action::Show(Screen::Equilibria), "equilibria"),
+            (Action::Write, "write"),
+            leave,
+        ],
+        Place::On(Screen::Knock) => vec![
+            help,
+            (Action::Step(Step::On), "next"),
+            (Action::Knock(Step::Back), "take more"),
+            (Action::Knock(Step::On), "less"),
+            (Action::Other, "who"),
+            (Action::Scroll(Direction::Down), "species"),
+            (Action::Scenario(Step::On), "scenario"),
+            (Action::Show(Screen::Equilibria), "equilibria"),
+            (Action::Write, "write"),
             leave,
         ],
         Place::On(_) => vec![

@@ -4,8 +4,11 @@
 
 mod bench;
 mod chooser;
+mod interactions;
 mod kept;
+mod knock;
 mod skeleton;
+mod texts;
 mod values;
 mod walk;
 mod written;

@@ -1,6 +1,6 @@
 //! What the user wants, on every screen.
 
-use super::{entry, record, session, sketch, values};
+use super::{entry, interactions, knock, record, session, sketch, values};
 use crate::app::action::{Action, Step};
 use crate::app::beside::ids;
 use crate::app::geometry::{equilibria, listed, values as parts_of_values};
@@ -45,8 +45,12 @@ pub(super) fn act(app: &mut App, action: Action) -> Vec<Effect> {
         | Action::Logarithmic(_)
         | Action::Move(_) => sketch::act(app, action),
         Action::Fine(_) | Action::Coarse(_) | Action::Undo | Action::Redo | Action::Forget => values::act(app, action),
+        Action::Other | Action::Absent | Action::Scroll(_) if app.screen == Screen::Interactions => {
+            interactions::act(app, action);
+        }
+        Action::Other | Action::Knock(_) | Action::Scroll(_) if app.screen == Screen::Knock => knock::act(app, action),
         Action::Other => other(app),
-        Action::Knock(_) => {}
+        Action::Knock(_) | Action::Absent | Action::Scroll(_) => {}
     }
     Vec::new()
 }

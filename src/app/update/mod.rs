@@ -1,14 +1,17 @@
 //! The only function that changes the state. Each answers with what is to be done outside.
 //!
-//! `acts` does what the user wants on every screen, `sketch` what concerns the sketch, `values` tried values, `entry` what is
-//! typed, `record` what is written, `chooser` which models there are, `arrivals` what comes from outside, `reread` a file
-//! that has changed, `session` what outlives the program. [`update()`] restores at its end what always holds: whatever is selected is
+//! `acts` does what the user wants on every screen, `sketch` what concerns the sketch, `interactions` and `knock` what
+//! concerns those, `values` tried values, `entry` what is typed, `record` what is written, `chooser` which models there are,
+//! `arrivals` what comes from outside, `reread` a file that has changed, `session` what outlives the program. [`update()`]
+//! restores at its end what always holds: whatever is selected is
 //! there and in sight; and asks for what the screen needs.
 
 mod acts;
 mod arrivals;
 mod chooser;
 mod entry;
+mod interactions;
+mod knock;
 mod record;
 mod reread;
 mod session;
@@ -67,4 +70,6 @@ fn settle(app: &mut App) {
     study.parameter = study.parameter.min(parameters.saturating_sub(1));
     let room = listed(values_parts(size, count).list);
     study.parameters_from = scrolled(study.parameters_from, study.parameter, parameters, room);
+    interactions::settle(app);
+    knock::settle(app);
 }

@@ -46,6 +46,8 @@ fn renewed(old: &Study, world: &Arc<World>, only: &[String], tried: Tried) -> St
     study.tried = Tried { follow: was_tried, ..tried };
     if is_alike {
         study.sketch = old.sketch.clone();
+        study.interacting = old.interacting;
+        study.knock = old.knock;
     }
     if let Some((_, parameter)) = old.parameter() {
         let names = study.parameters().iter().position(|id| model.parameters[id.0].name == parameter.name);

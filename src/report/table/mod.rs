@@ -54,9 +54,8 @@ pub use latex::latex;
 pub use markdown::markdown;
 pub use number::{bound, human, human_above, human_below};
 pub use selection::{Selection, UnknownColumn};
-pub(super) use text::clean;
-pub use text::{Page, failed, text};
-pub(super) use words::CAUTION;
+pub use text::{Page, clean, failed, text};
+pub use words::CAUTION;
 
 pub use super::check::Style;
 

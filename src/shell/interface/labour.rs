@@ -50,7 +50,7 @@ impl Labour {
         let to = match task {
             Task::Read(..) | Task::Solve { .. } => &self.slow,
             Task::Name { .. } | Task::Compare { .. } => &self.between,
-            Task::Prepare(..) | Task::Paint(_) | Task::Follow { .. } => &self.quick,
+            Task::Prepare(..) | Task::Paint(_) | Task::Follow { .. } | Task::Run(_) => &self.quick,
         };
         let is_quick = !matches!(task, Task::Read(..) | Task::Solve { .. });
         self.flags.insert(id, (Arc::clone(&stop), is_quick));
