@@ -33,6 +33,8 @@ pub enum Task {
         world: Arc<World>,
         /// What was found, in the order of the scenarios.
         scenes: Vec<Found>,
+        /// Where the last is one of tried values, the scenario of the file that they are set over: it is named after that one.
+        tried_over: Option<usize>,
         /// Seconds that it may take.
         budget: f64,
     },

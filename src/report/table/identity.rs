@@ -3,7 +3,7 @@
 //! Which equilibrium is which is found out by following it from one scenario to the next, see `analysis::passage`; here
 //! numbers become names, and what could not be followed becomes a sentence. A name is never given for being near.
 
-use crate::analysis::passage::{Identities, Reason};
+use crate::analysis::passage::{Identities, Passage, Reason};
 
 /// The names of the equilibria of some scenarios.
 #[derive(Clone, Debug, Default, PartialEq)]
@@ -29,6 +29,25 @@ impl Names {
     /// The names of one scenario alone, of so many equilibria.
     pub fn alone(count: usize) -> Self {
         Self::new(&Identities { numbers: vec![(1..=count).collect()], unfollowed: vec![Vec::new()] })
+    }
+
+    /// Adds a scenario of so many equilibria, which take the names of those of an earlier one, by its place among those shown,
+    /// that they are followed from; the others have new ones.
+    pub fn add_after(&mut self, earlier: usize, count: usize, passage: &Passage) {
+        let mut ids: Vec<Option<String>> = vec![None; count];
+        for (old, new) in passage.pairs() {
+            if let (Some(id), Some(old)) = (ids.get_mut(new), self.of(earlier).get(old)) {
+                *id = Some(old.clone());
+            }
+        }
+        let number = |id: &String| id.strip_prefix('E').and_then(|number| number.parse::<usize>().ok());
+        let mut last = self.ids.iter().flatten().filter_map(number).max().unwrap_or(0);
+        let mut new = || {
+            last += 1;
+            format!("E{last}")
+        };
+        self.ids.push(ids.into_iter().map(|id| id.unwrap_or_else(&mut new)).collect());
+        self.unfollowed.push(Vec::new());
     }
 
     /// The names of a scenario's equilibria, by its place among those shown.
