@@ -7,7 +7,7 @@ use super::study::Selected;
 use super::{App, Study};
 use crate::report::interactions::{self, Effects, Interactions, Who, sentences, signs, visible};
 use crate::report::sketch::{self, Style};
-use crate::report::table::CAUTION;
+use crate::report::table::{CAUTION, Page};
 
 /// What is looked at.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -114,12 +114,16 @@ pub fn words(selected: &Selected<'_>, style: Style) -> Vec<String> {
     sentences(selected.model(), selected.equilibrium, selected.assessed, style)
 }
 
+/// Columns of the sentences that are saved.
+const SAVED_COLUMNS: usize = 80;
+
 /// Both tables of the selected equilibrium as text, for a file; `None` where nothing is selected.
 pub fn text(app: &App) -> Option<String> {
     let study = app.study.as_ref()?;
     let selected = study.selected()?;
     let mut lines = selected.heading(study, app.style);
-    lines.extend(words(&selected, app.style));
+    let page = Page { width: SAVED_COLUMNS, style: app.style, color: false };
+    lines.extend(words(&selected, app.style).iter().map(|text| page.paragraph("", text, 0)));
     for effects in [Effects::Direct, Effects::Net] {
         lines.push(String::new());
         match table(study, effects)? {
@@ -130,8 +134,8 @@ pub fn text(app: &App) -> Option<String> {
             Err(reason) => lines.push(reason.to_owned()),
         }
     }
-    lines.extend([String::new(), CAUTION.to_owned()]);
-    Some(lines.iter().map(|line| format!("{}\n", line.trim_end())).collect())
+    lines.extend([String::new(), page.paragraph("", CAUTION, 0)]);
+    Some(lines.iter().fold(String::new(), |text, line| text + line.trim_end() + "\n"))
 }
 
 /// Both tables as CSV, one row an effect; `None` where there is none.
