@@ -1,33 +1,46 @@
-//! Models to choose from, as plain data.
+//! The entries of the chooser, and completions of a typed path, as plain data.
+//!
+//! They are found by `shell::catalogue`. All texts here are harmless to a terminal.
 
 use super::Source;
 
-/// Why a model is offered.
+/// Why a model is listed.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
 pub enum Origin {
     /// It was named on the command line.
     Given,
-    /// It is in the folder of scenarios.
+    /// It lies in the folder of models.
     Folder,
-    /// It was opened before.
+    /// It was opened recently.
     Recent,
-    /// It is compiled in.
+    /// It comes with the program.
     Compiled,
 }
 
-/// A model to choose.
-#[derive(Clone, Debug, PartialEq)]
+/// A model that can be chosen.
+#[derive(Clone, Debug, PartialEq, Eq)]
 pub struct Entry {
-    /// Where it comes from.
+    /// Where it is read from.
     pub source: Source,
-    /// Why it is offered.
+    /// Why it is listed.
     pub origin: Origin,
-    /// Its title, harmless.
+    /// What its file is called, as it is shown.
+    pub name: String,
+    /// What it calls itself; empty where it could not be read.
     pub title: String,
-    /// Names of its species.
+    /// The names of its species.
     pub species: Vec<String>,
     /// How many scenarios it has.
     pub scenarios: usize,
-    /// What is wrong with it, with its place.
+    /// Why it cannot be used: the first error as `file:line:column: message`.
     pub problem: Option<String>,
+}
+
+/// What a typed path could become.
+#[derive(Clone, Debug, Default, PartialEq, Eq)]
+pub struct Completion {
+    /// The text, as far as all that begin with it agree.
+    pub text: String,
+    /// Those that begin with it, in order; a folder ends in `/`. Not all where there are many.
+    pub candidates: Vec<String>,
 }

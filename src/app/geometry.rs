@@ -107,6 +107,53 @@ pub fn equilibria(size: Size, count: usize) -> Equilibria {
     Equilibria { sentence, list, numbers, sketch }
 }
 
+/// The parts of the screen where values are tried.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub struct Values {
+    /// What the tried values change, in words.
+    pub sentence: Area,
+    /// The parameters.
+    pub list: Area,
+    /// All about the selected one.
+    pub details: Area,
+    /// The sketch.
+    pub sketch: Area,
+    /// The equilibria, in short.
+    pub found: Area,
+}
+
+/// Columns of the parameters at least and at most.
+const PARAMETERS: [u16; 2] = [29, 84];
+/// Rows for all about the selected parameter.
+const DETAILS: [u16; 2] = [5, 8];
+
+/// The parts of the screen where values are tried, with so many equilibria to be listed.
+pub fn values(size: Size, count: usize) -> Values {
+    let body = frame(size).body;
+    let (sentence, rest) = body.top(if size.columns < 120 { 3 } else { 2 });
+    let (left, right) = rest.left((size.columns * 2 / 5).clamp(PARAMETERS[0], PARAMETERS[1]));
+    let (details, list) = left.bottom((left.rows / 3).clamp(DETAILS[0], DETAILS[1]));
+    let right = Area { x: right.x + 1, columns: right.columns.saturating_sub(1), ..right };
+    let wanted = u16::try_from(count).unwrap_or(u16::MAX).saturating_add(1);
+    let (found, sketch) = right.bottom(wanted.min(right.rows / 3));
+    Values { sentence, list, details, sketch, found }
+}
+
+/// The parts of the chooser.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub struct Models {
+    /// The models, below a heading.
+    pub list: Area,
+    /// All about the selected one.
+    pub details: Area,
+}
+
+/// The parts of the chooser.
+pub fn chooser(size: Size) -> Models {
+    let (details, list) = frame(size).body.bottom(5);
+    Models { list, details }
+}
+
 /// How many entries a list shows below its heading.
 pub fn listed(list: Area) -> usize {
     usize::from(list.rows.saturating_sub(2).max(1))
@@ -135,13 +182,18 @@ mod tests {
             for rows in [0, 1, 2, 3, 19, 20, 24, 50, 200] {
                 for count in [0, 1, 5, 600] {
                     let size = Size { columns, rows };
-                    let (frame, parts) = (frame(size), equilibria(size, count));
+                    let (frame, parts, values) = (frame(size), equilibria(size, count), values(size, count));
                     let areas = [
                         frame.heading,
                         parts.sentence,
                         parts.list,
                         parts.numbers,
                         parts.sketch,
+                        values.sentence,
+                        values.list,
+                        values.details,
+                        values.sketch,
+                        values.found,
                         frame.status,
                         frame.keys,
                     ];
@@ -149,6 +201,8 @@ mod tests {
                         assert!(area.x + area.columns <= columns.max(area.x) && area.y + area.rows <= rows, "{size:?}");
                     }
                     if !size.is_too_small() {
+                        assert!(values.sketch.columns >= 20 && values.sketch.rows >= 8, "{size:?}: {values:?}");
+                        assert!(listed(values.list) >= 3 && values.details.rows >= 5, "{size:?}: {values:?}");
                         assert!(parts.sketch.columns >= 20 && parts.sketch.rows >= 8, "{size:?}: {parts:?}");
                         assert!(listed(parts.list) >= 1 && parts.numbers.rows >= 5, "{size:?}: {parts:?}");
                     }

@@ -3,8 +3,10 @@
 use std::sync::Arc;
 
 use super::Source;
+use super::beside::Beside;
 use super::interactions::Interacting;
 use super::knock::Knock;
+use super::memory::Session;
 use super::sketch::Sketch;
 use crate::analysis::assess::Assessed;
 use crate::analysis::equilibria::Equilibrium;
@@ -22,6 +24,8 @@ pub struct World {
     pub original: Original,
     /// Its equations and search box.
     pub prepared: Prepared,
+    /// Parameters set for the whole session, over file and scenario.
+    pub set: Vec<(ParameterId, f64)>,
 }
 
 impl PartialEq for World {
@@ -83,6 +87,12 @@ pub struct Tried {
     pub redo: Vec<TriedSet>,
     /// The edition of the world that it is to be searched in.
     pub edition: u64,
+    /// The edition that is kept outside, or written to a file.
+    pub kept: u64,
+    /// The edition that was written to a file.
+    pub recorded: u64,
+    /// Whether it is to be looked at as soon as it is ready.
+    pub follow: bool,
 }
 
 /// A model that is open.
@@ -106,6 +116,8 @@ pub struct Study {
     pub from: usize,
     /// The first number of the selected equilibrium that is shown.
     pub facts_from: usize,
+    /// What is selected where scenarios stand side by side.
+    pub beside: Beside,
     /// What the sketch shows.
     pub sketch: Sketch,
     /// How the interactions are looked at.
@@ -114,7 +126,9 @@ pub struct Study {
     pub knock: Knock,
     /// Values that were tried.
     pub tried: Tried,
-    /// The parameter that is selected where values are tried.
+    /// What was tried when the program ran last and is in no file, until something is tried now.
+    pub offer: Option<Session>,
+    /// The parameter that is selected where values are tried, by its place in [`Study::parameters`].
     pub parameter: usize,
     /// The first parameter that is shown.
     pub parameters_from: usize,
@@ -134,10 +148,12 @@ impl Study {
             wanted: None,
             from: 0,
             facts_from: 0,
+            beside: Beside::default(),
             sketch: Sketch::default(),
             interacting: Interacting::default(),
             knock: Knock::default(),
             tried: Tried::default(),
+            offer: None,
             parameter: 0,
             parameters_from: 0,
         }
@@ -180,7 +196,7 @@ impl Study {
 
     /// How many slots are those of the file's scenarios.
     pub fn of_file(&self) -> usize {
-        self.slots.iter().filter(|slot| slot.scenario < self.model().scenarios.len()).count()
+        self.slots.iter().filter(|slot| slot.world == self.world).count()
     }
 
     /// Whether a slot holds tried values.
@@ -218,7 +234,8 @@ impl Study {
 
     /// The slots whose equilibria can be named together: all that are searched in the world that they belong to.
     pub fn nameable(&self) -> Vec<usize> {
-        (0..self.slots.len()).filter(|&k| self.slots[k].is_fresh()).collect()
+        let is_present = |slot: &Slot| slot.world == self.world || slot.world.edition == self.tried.edition;
+        (0..self.slots.len()).filter(|&k| self.slots[k].is_fresh() && is_present(&self.slots[k])).collect()
     }
 
     /// The name of the equilibrium that is selected.

@@ -5,6 +5,7 @@ use std::sync::Arc;
 use super::study::{TriedSet, World};
 use super::{Read, Source};
 use crate::analysis::field::{Scale, Slice, Window};
+use crate::analysis::passage::Passage;
 use crate::analysis::paths::Path;
 use crate::report::course::Course;
 use crate::report::sketch::{Picture, Plot};
@@ -13,8 +14,8 @@ use crate::report::table::{Names, Scene, Solved};
 /// What takes time. Two tasks that are equal have the same answer.
 #[derive(Clone, Debug, PartialEq)]
 pub enum Task {
-    /// Reads a model and makes it ready; the number tells one reading from another.
-    Read(Source, u64),
+    /// Reads a model and makes it ready, with parameters set by name; the number tells one reading from another.
+    Read(Source, Vec<(String, f64)>, u64),
     /// Makes a model with a tried scenario at its end ready; the number is the edition that it gets.
     Prepare(Arc<World>, TriedSet, u64),
     /// Searches a scenario.
@@ -32,6 +33,17 @@ pub enum Task {
         world: Arc<World>,
         /// What was found, in the order of the scenarios.
         scenes: Vec<Found>,
+        /// Seconds that it may take.
+        budget: f64,
+    },
+    /// Follows the equilibria of the first of several scenarios to each of the others.
+    Compare {
+        /// A model with all those scenarios.
+        world: Arc<World>,
+        /// What was found, in the order of the columns.
+        scenes: Vec<Found>,
+        /// Names of what was found, in the same order.
+        names: Vec<Vec<String>>,
         /// Seconds that it may take.
         budget: f64,
     },
@@ -101,6 +113,23 @@ impl Found {
     }
 }
 
+/// Scenarios side by side: all that a comparison is made of.
+#[derive(Clone, Debug)]
+pub struct Compared {
+    /// The model.
+    pub world: Arc<World>,
+    /// What was found, column by column.
+    pub scenes: Vec<Scene>,
+    /// Names of what was found.
+    pub names: Names,
+    /// The names that they have where only these are looked at: what the command that makes the table again gives them.
+    pub own_names: Names,
+    /// From the first column to each of the others.
+    pub passages: Vec<Option<Passage>>,
+    /// Every name, in the order of first appearance.
+    pub ids: Vec<String>,
+}
+
 /// What came of a task.
 #[derive(Clone, Debug)]
 pub enum Answer {
@@ -112,6 +141,8 @@ pub enum Answer {
     Solved(Box<Scene>),
     /// Of naming, scenario by scenario.
     Named(Arc<Names>),
+    /// Of comparing.
+    Compared(Arc<Compared>),
     /// Of painting; nothing where the scenario has no equations.
     Painted(Option<Arc<Picture>>),
     /// Of following.

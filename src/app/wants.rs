@@ -5,10 +5,10 @@
 
 use std::sync::Arc;
 
-use super::geometry;
 use super::study::Slot;
 use super::task::{Found, Painting, Task};
 use super::{App, Screen, Study};
+use super::{beside, geometry};
 use crate::analysis::field::{Held, Slice, Window};
 use crate::report::sketch::{Plot, Size, fit};
 use crate::report::table::Solved;
@@ -17,20 +17,34 @@ use crate::report::table::Solved;
 pub fn wants(app: &App) -> Vec<Task> {
     let mut tasks = Vec::new();
     if let Some((source, edition)) = &app.reading {
-        tasks.push(Task::Read(source.clone(), *edition));
+        tasks.push(Task::Read(source.clone(), app.set.clone(), *edition));
     }
     let Some(study) = &app.study else { return tasks };
     tasks.extend(preparing(study));
     tasks.extend(searches(app, study));
     tasks.extend(naming(app, study));
-    if matches!(app.screen, Screen::Equilibria | Screen::Values) {
-        tasks.extend(painting(study, study.current, sketch_size(app, study)).map(Task::Paint));
-        tasks.extend(paths(study));
+    match app.screen {
+        Screen::Equilibria | Screen::Values => {
+            tasks.extend(painting(study, study.current, sketch_size(app, study)).map(Task::Paint));
+            tasks.extend(paths(study));
+        }
+        Screen::SideBySide => tasks.extend(side_by_side(app, study)),
+        Screen::Chooser | Screen::Interactions | Screen::Knock => {}
     }
     if app.screen == Screen::Knock {
         tasks.extend(super::knock::run(study));
     }
     tasks
+}
+
+/// The sketches of the scenarios that are shown, and the comparison.
+fn side_by_side(app: &App, study: &Study) -> Vec<Task> {
+    let slots = beside::shown(study, app.size);
+    let parts = beside::parts(app.size, slots.len(), beside::ids(study, app.size).len());
+    let sketches = slots.iter().zip(&parts.columns).filter_map(|(&slot, [_, area])| {
+        painting(study, slot, Size { columns: area.columns.into(), rows: area.rows.into() }).map(Task::Paint)
+    });
+    sketches.chain(paths(study)).chain(beside::task(app, study)).collect()
 }
 
 /// The tried values, where they are others than those that are ready.
@@ -51,9 +65,10 @@ fn searches<'s>(app: &'s App, study: &'s Study) -> impl Iterator<Item = Task> + 
 /// Names for all that is found.
 pub(super) fn naming(app: &App, study: &Study) -> Option<Task> {
     let found = |slot: &Slot| slot.found.as_ref().map(|(_, scene)| Found(Arc::clone(scene)));
-    let scenes: Vec<Found> = study.nameable().iter().filter_map(|&k| found(&study.slots[k])).collect();
+    let slots: Vec<&Slot> = study.nameable().iter().filter_map(|&k| study.slots.get(k)).collect();
+    let scenes: Vec<Found> = slots.iter().filter_map(|slot| found(slot)).collect();
     // The world of the tried values has the scenarios of the file as well.
-    let world = study.slots.last().filter(|slot| slot.is_fresh()).map_or(&study.world, |slot| &slot.world);
+    let world = slots.last().map_or(&study.world, |slot| &slot.world);
     (!scenes.is_empty()).then(|| Task::Name { world: Arc::clone(world), scenes, budget: app.budget })
 }
 
@@ -63,7 +78,16 @@ fn search(slot: &Slot, budget: f64) -> Task {
 
 /// Columns and rows of the sketch on the present screen.
 pub fn sketch_size(app: &App, study: &Study) -> Size {
-    let area = geometry::equilibria(app.size, study.count()).sketch;
+    let area = match app.screen {
+        Screen::SideBySide => {
+            let slots = beside::shown(study, app.size);
+            let parts = beside::parts(app.size, slots.len(), beside::ids(study, app.size).len());
+            let place = slots.iter().position(|&slot| slot == study.current).unwrap_or(0);
+            parts.columns.get(place).map_or_else(Default::default, |[_, sketch]| *sketch)
+        }
+        Screen::Values => geometry::values(app.size, study.count()).sketch,
+        _ => geometry::equilibria(app.size, study.count()).sketch,
+    };
     Size { columns: area.columns.into(), rows: area.rows.into() }
 }
 

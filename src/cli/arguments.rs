@@ -5,9 +5,10 @@ use std::path::PathBuf;
 use clap::{Args, Parser, Subcommand, ValueEnum};
 
 use crate::report::sketch::{LARGEST, SMALLEST, Size};
+use crate::report::table::{Form, Limits};
 
 /// Seconds that the search of one scenario may take where `--budget` does not say.
-pub(super) const BUDGET: f64 = 10.0;
+pub(super) const BUDGET: f64 = Limits::SECONDS;
 
 /// More threads than this are a slip of the finger.
 const MOST_THREADS: i64 = 1024;
@@ -59,6 +60,14 @@ pub(super) enum Command {
         #[command(flatten)]
         show: Show,
     },
+    /// Put scenarios side by side: which equilibria stay, change, are lost and gained
+    #[command(after_help = AFTER_COMPARE)]
+    Compare {
+        /// Model file in YAML, or - for standard input
+        model: PathBuf,
+        #[command(flatten)]
+        work: Work,
+    },
     /// Draw the direction field of each scenario, with its equilibria, in characters
     #[command(
         after_help = "The drawing shows what lies around the equilibria and today's stocks, for all scenarios alike."
@@ -87,6 +96,11 @@ Equilibria are called E1, E2, ... and keep their names in all scenarios of one r
 text, markdown and latex are for people: numbers rounded, columns that are empty left out. csv has one row for each \
 equilibrium of each scenario, json has the most; both have exact numbers. Every format says what is proved, what is \
 numerical and what is undecided, and has what is needed to make the table again.";
+
+const AFTER_COMPARE: &str = "\
+The first scenario is the reference that the others are compared with. Each equilibrium is followed from it to every \
+other scenario on the way between their balances; what is found so is numerical, and --strict does not ask that it be \
+proved.";
 
 /// What is shown of the results.
 #[derive(Debug, Default, Args)]
@@ -212,15 +226,14 @@ pub(super) enum Format {
     Latex,
 }
 
-impl Format {
-    /// As it is typed.
-    pub(super) fn word(self) -> &'static str {
-        match self {
-            Format::Text => "text",
-            Format::Csv => "csv",
-            Format::Markdown => "markdown",
-            Format::Json => "json",
-            Format::Latex => "latex",
+impl From<Format> for Form {
+    fn from(format: Format) -> Self {
+        match format {
+            Format::Text => Self::Text,
+            Format::Csv => Self::Csv,
+            Format::Markdown => Self::Markdown,
+            Format::Json => Self::Json,
+            Format::Latex => Self::Latex,
         }
     }
 }

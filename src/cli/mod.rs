@@ -19,6 +19,7 @@ use crate::shell::{files, terminal};
 mod arguments;
 mod check;
 mod choice;
+mod compare;
 mod interface;
 mod model;
 mod sketch;
@@ -42,9 +43,10 @@ pub enum Exit {
     Signal(i32),
 }
 
-impl From<Exit> for ExitCode {
-    fn from(exit: Exit) -> Self {
-        Self::from(match exit {
+impl Exit {
+    /// Its number, which is part of the contract.
+    pub fn number(self) -> u8 {
+        match self {
             Exit::Done => 0,
             Exit::Fault => 1,
             Exit::Usage => 2,
@@ -52,7 +54,13 @@ impl From<Exit> for ExitCode {
             Exit::Interrupted => 130,
             // As a shell reports a process that a signal ended.
             Exit::Signal(number) => u8::try_from(128 + number).unwrap_or(1),
-        })
+        }
+    }
+}
+
+impl From<Exit> for ExitCode {
+    fn from(exit: Exit) -> Self {
+        Self::from(exit.number())
     }
 }
 
@@ -150,6 +158,7 @@ fn perform(arguments: &Arguments, screen: Screen) -> Outcome {
         Some(Command::Table { show, .. }) if show.is_help() => table::columns(options),
         Some(Command::Table { model: None, .. }) => Outcome::only(NO_MODEL.to_owned(), Exit::Usage),
         Some(Command::Table { model, work, show }) => table::table(model.as_deref(), work, show, options, screen),
+        Some(Command::Compare { model, work }) => compare::compare(model, work, options, screen),
         Some(Command::Sketch(asked)) => sketch::sketch(asked, options, screen),
         None if arguments.show.is_help() => table::columns(options),
         None => interface::interface(arguments).unwrap_or_else(|| {

@@ -3,7 +3,6 @@
 use crate::analysis::field::{LINEAR, Slice, Window};
 use crate::analysis::prepare::Prepared;
 use crate::analysis::subject::Subject;
-use crate::diag::Diagnostic;
 use crate::diag::cleanse::cleanse;
 use crate::model::{Model, Original};
 use crate::report::sketch::{Picture, Plot, Size, Style, View, closing, heading, legend_rows, text, window};
@@ -17,7 +16,7 @@ use crate::shell::workers::Threads;
 use super::arguments::{BUDGET, Format, Options, Sketch, Work};
 use super::choice::{self, Choice};
 use super::model::{remarks, wrong};
-use super::solve::Solver;
+use super::solve::{Solver, ended};
 use super::{Exit, Outcome, Screen};
 
 /// Rows below which a drawing is not cut to let its legend fit the terminal as well.
@@ -72,18 +71,7 @@ fn present(
     screen: Screen,
     interrupted: bool,
 ) -> Outcome {
-    let problems = scenes.iter().filter_map(|scene| scene.outcome.as_ref().err());
-    let failed: Vec<Diagnostic> = problems.flatten().cloned().collect();
-    let is_proved = |scene: &Scene| scene.outcome.as_ref().is_ok_and(Solved::is_proved);
-    let exit = if interrupted {
-        Exit::Interrupted
-    } else if !failed.is_empty() {
-        Exit::Fault
-    } else if *strict && !scenes.iter().all(is_proved) {
-        Exit::Unproved
-    } else {
-        Exit::Done
-    };
+    let (failed, exit) = ended(scenes, interrupted, *strict);
     let remarks = remarks(&failed, &original.model.sources, screen.color_remarks);
     Outcome { result: result.to_owned(), remarks, exit }
 }

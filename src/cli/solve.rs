@@ -3,13 +3,16 @@
 use crate::analysis::equilibria::Budget;
 use crate::analysis::passage::Ways;
 use crate::analysis::prepare::Prepared;
+use crate::diag::Diagnostic;
 use crate::model::Model;
-use crate::report::table::{Limits, Names, Scene};
+use crate::report::table::{Limits, Names, Scene, Solved};
 use crate::shell::clock::Deadline;
 use crate::shell::progress::Meter;
 use crate::shell::signal::Interrupt;
 use crate::shell::solver::{names, scene};
 use crate::shell::workers::Threads;
+
+use super::Exit;
 
 /// All that the search of a scenario needs.
 pub(super) struct Solver<'s> {
@@ -46,4 +49,21 @@ impl Solver<'_> {
         let mut ways = Ways::new(self.model, self.prepared);
         use_them(&mut ways, &|| self.interrupt.is_raised() || deadline.is_past())
     }
+}
+
+/// What was wrong with scenarios, and how a run that shows them has ended.
+pub(super) fn ended(scenes: &[Scene], interrupted: bool, strict: bool) -> (Vec<Diagnostic>, Exit) {
+    let problems = scenes.iter().filter_map(|scene| scene.outcome.as_ref().err());
+    let failed: Vec<Diagnostic> = problems.flatten().cloned().collect();
+    let is_proved = |scene: &Scene| scene.outcome.as_ref().is_ok_and(Solved::is_proved);
+    let exit = if interrupted {
+        Exit::Interrupted
+    } else if !failed.is_empty() {
+        Exit::Fault
+    } else if strict && !scenes.iter().all(is_proved) {
+        Exit::Unproved
+    } else {
+        Exit::Done
+    };
+    (failed, exit)
 }

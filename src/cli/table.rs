@@ -3,12 +3,9 @@
 use std::path::Path;
 
 use crate::analysis::prepare::Prepared;
-use crate::diag::Diagnostic;
 use crate::diag::cleanse::cleanse;
 use crate::model::{Model, Original};
-use crate::report::table::{
-    Limits, Page, Scene, Selection, Solved, Style, Table, UnknownColumn, csv, guide, json, latex, markdown, text,
-};
+use crate::report::table::{Command, Limits, Page, Scene, Selection, Style, Table, UnknownColumn, guide, written};
 use crate::shell::models::{Reading, read};
 use crate::shell::signal::Interrupt;
 use crate::shell::solver::BOXES;
@@ -16,8 +13,8 @@ use crate::shell::workers::Threads;
 
 use super::arguments::{BUDGET, Format, Options, Show, Work};
 use super::choice::Choice;
-use super::model::{pretty, remarks, wrong};
-use super::solve::Solver;
+use super::model::{remarks, wrong};
+use super::solve::{Solver, ended};
 use super::{Exit, Outcome, Screen};
 
 /// Says what columns there are.
@@ -55,7 +52,8 @@ pub(super) fn table(path: Option<&Path>, work: &Work, show: &Show, options: &Opt
     let solver = Solver { model, prepared: &prepared, limits, threads, interrupt: &interrupt };
     let scenes: Vec<Scene> = choice.scenarios.iter().map(|&scenario| solver.scene(scenario)).collect();
     let names = solver.names(&scenes);
-    let command = command(path, work, show, options, &choice, model);
+    let word = path.map(|path| ("table", path));
+    let command = command(word, work, show.columns.as_deref(), options, &choice, model);
     let table = Table {
         model,
         sha256: &original.sha256,
@@ -75,25 +73,8 @@ pub(super) fn table(path: Option<&Path>, work: &Work, show: &Show, options: &Opt
 fn present(table: &Table<'_>, original: &Original, work: &Work, options: &Options, screen: Screen) -> Outcome {
     let style = if options.ascii { Style::Ascii } else { Style::Unicode };
     let page = Page { width: screen.width, style, color: screen.color };
-    let result = match options.format {
-        Format::Text => text(table, page),
-        Format::Csv => csv(table, style),
-        Format::Markdown => markdown(table, page),
-        Format::Json => pretty(&json(table), options),
-        Format::Latex => latex(table, page),
-    };
-    let problems = table.scenes.iter().filter_map(|scene| scene.outcome.as_ref().err());
-    let failed: Vec<Diagnostic> = problems.flatten().cloned().collect();
-    let is_proved = |scene: &Scene| scene.outcome.as_ref().is_ok_and(Solved::is_proved);
-    let exit = if table.interrupted {
-        Exit::Interrupted
-    } else if !failed.is_empty() {
-        Exit::Fault
-    } else if work.strict && !table.scenes.iter().all(is_proved) {
-        Exit::Unproved
-    } else {
-        Exit::Done
-    };
+    let result = written(table, options.format.into(), page);
+    let (failed, exit) = ended(table.scenes, table.interrupted, work.strict);
     Outcome { result, remarks: remarks(&failed, &original.model.sources, screen.color_remarks), exit }
 }
 
@@ -105,38 +86,25 @@ fn no_such_column(unknown: &UnknownColumn) -> String {
     format!("error: no column is called \"{}\"{meant}\n", cleanse(&unknown.id))
 }
 
-/// The command that makes the table, without the options that make no difference to it.
-fn command(path: Option<&Path>, work: &Work, show: &Show, options: &Options, choice: &Choice, model: &Model) -> String {
-    let mut words: Vec<String> = vec!["restpoint".to_owned()];
-    if let Some(path) = path {
-        words.extend(["table".to_owned(), quoted(&path.to_string_lossy())]);
-    }
-    if !work.scenarios.is_empty() {
-        let names = choice.scenarios.iter().filter_map(|&scenario| model.scenarios.get(scenario));
-        words.extend(names.flat_map(|scenario| ["--scenario".to_owned(), quoted(&scenario.name)]));
-    }
-    for &(id, value) in &choice.set {
-        let name = model.parameters.get(id.0).map_or("", |parameter| &parameter.name);
-        words.extend(["--set".to_owned(), quoted(&format!("{name}={value}"))]);
-    }
-    if let Some(seconds) = work.budget {
-        words.extend(["--budget".to_owned(), seconds.to_string()]);
-    }
-    if let Some(list) = &show.columns {
-        words.extend(["--columns".to_owned(), quoted(list)]);
-    }
-    if options.format != Format::Text {
-        words.extend(["--format".to_owned(), options.format.word().to_owned()]);
-    }
-    words.join(" ")
-}
-
-/// A word as a shell reads it.
-fn quoted(word: &str) -> String {
-    let is_plain = |c: char| c.is_alphanumeric() || "-_./=+,:@%".contains(c);
-    if !word.is_empty() && word.chars().all(is_plain) {
-        word.to_owned()
-    } else {
-        format!("'{}'", word.replace('\'', "'\\''"))
-    }
+/// The command that makes what is shown, by its word and model.
+pub(super) fn command(
+    what: Option<(&str, &Path)>,
+    work: &Work,
+    columns: Option<&str>,
+    options: &Options,
+    choice: &Choice,
+    model: &Model,
+) -> String {
+    let path = what.map(|(_, path)| path.to_string_lossy());
+    let command = Command {
+        word: what.map_or("table", |(word, _)| word),
+        path: path.as_deref(),
+        model,
+        scenarios: if work.scenarios.is_empty() { &[] } else { &choice.scenarios },
+        set: &choice.set,
+        budget: work.budget,
+        columns,
+        form: options.format.into(),
+    };
+    command.to_string()
 }

@@ -8,6 +8,7 @@
 //! `follow` (from a value back to its bytes), `slips` and `messages` (what is said), `findings` (what was said), `load`
 //! (a module for each section).
 
+pub mod amend;
 mod events;
 mod findings;
 mod follow;

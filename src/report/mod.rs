@@ -1,10 +1,12 @@
 //! What is shown of a model and its results, as text and as data; no terminal, no files.
 //!
 //! [`check`] says what was understood of a model file, [`table`] what equilibria its scenarios have, [`sketch`] draws their
-//! direction field, [`course`] what happens after a knock, [`interactions`] who acts on whom, [`kinds`] is how each kind of equilibrium is written, [`grid`] holds
-//! what is drawn in cells, `layout` breaks lines.
+//! direction field, [`compare`] puts scenarios side by side, [`course`] shows what happens after a knock, [`interactions`]
+//! who acts on whom, [`kinds`] is how each kind of equilibrium is written, [`grid`] holds what is drawn in cells, `layout`
+//! breaks lines.
 
 pub mod check;
+pub mod compare;
 pub mod course;
 pub mod grid;
 pub mod interactions;

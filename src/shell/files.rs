@@ -12,7 +12,10 @@ use sha2::{Digest, Sha256};
 use crate::model::load::Files;
 
 /// A model's text is refused beyond this; reading stops one byte later.
-const MODEL_LIMIT: usize = 1 << 20;
+pub(super) const MODEL_LIMIT: usize = 1 << 20;
+
+/// Names that are tried for a copy.
+const COPIES: usize = 1000;
 
 /// A model as it was found.
 pub struct Found {
@@ -39,8 +42,20 @@ pub fn read_model(path: &Path) -> Result<Found> {
         bail!("{name} is a folder; name a model file in it");
     }
     let bytes = read_up_to(path, MODEL_LIMIT).map_err(|error| unreadable(&name, &error))?;
-    let folder = path.parent().unwrap_or(Path::new("")).to_path_buf();
-    Ok(Found { name, bytes, tables: Folder::at(folder) })
+    Ok(Found { name, bytes, tables: folder_of(path) })
+}
+
+/// A path as typed: `~/` at its beginning is the home folder, as shells have it.
+pub fn from_home(path: &Path) -> PathBuf {
+    match (path.strip_prefix("~"), std::env::home_dir()) {
+        (Ok(rest), Some(home)) => home.join(rest),
+        _ => path.to_path_buf(),
+    }
+}
+
+/// The folder that a model's tables are relative to.
+pub fn folder_of(model: &Path) -> Folder {
+    Folder::at(model.parent().unwrap_or(Path::new("")).to_path_buf())
 }
 
 fn unreadable(name: &str, error: &io::Error) -> anyhow::Error {
@@ -59,6 +74,15 @@ fn plain(error: &io::Error) -> String {
         io::ErrorKind::PermissionDenied => "permission denied".into(),
         _ => error.to_string(),
     }
+}
+
+/// The bytes of an ordinary file, at most one more than `limit`. A pipe or a device, which could keep one waiting for ever, is
+/// an error.
+pub(super) fn read_ordinary(path: &Path, limit: usize) -> io::Result<Vec<u8>> {
+    if path.metadata()?.is_file() {
+        return read_up_to(path, limit);
+    }
+    Err(io::Error::new(io::ErrorKind::InvalidInput, "it is no ordinary file"))
 }
 
 fn read_up_to(path: &Path, limit: usize) -> io::Result<Vec<u8>> {
@@ -116,6 +140,23 @@ pub fn refusal(path: &Path, replace: bool) -> Option<String> {
             "{name} is there already and was left as it is; choose another name, or add --force to replace it"
         )),
     }
+}
+
+/// A free name beside a model for a copy with what was tried in it: `NAME-tried.yaml`, else with the next number.
+///
+/// `None` where a thousand are taken, or the path has no name.
+pub fn name_for_copy(model: &Path) -> Option<PathBuf> {
+    let stem = model.file_stem()?.to_string_lossy();
+    let ending = model.extension().map_or("yaml".into(), |ending| ending.to_string_lossy());
+    // A copy of a copy is numbered, not called tried twice.
+    let numbered = stem.rsplit_once("-tried-").filter(|(_, number)| number.bytes().all(|b| b.is_ascii_digit()));
+    let stem = stem.strip_suffix("-tried").or(numbered.map(|(stem, _)| stem)).unwrap_or(&stem);
+    let name = |number: usize| match number {
+        1 => format!("{stem}-tried.{ending}"),
+        _ => format!("{stem}-tried-{number}.{ending}"),
+    };
+    let mut paths = (1..=COPIES).map(|number| model.with_file_name(name(number)));
+    paths.find(|path| path.symlink_metadata().is_err())
 }
 
 /// Writes a file whole or not at all: beside its place, synced, then renamed into it.

@@ -16,9 +16,21 @@ pub struct Compiled {
     text: &'static str,
 }
 
-/// Those that need no tables beside them; the first is shown when none is named.
-pub const COMPILED: &[Compiled] =
-    &[Compiled { name: "scenarios/skarnby-bank.yaml", text: include_str!("../../scenarios/skarnby-bank.yaml") }];
+/// A model of this repository, under the name that it has there.
+macro_rules! shipped {
+    ($name:literal) => {
+        Compiled { name: $name, text: include_str!(concat!("../../", $name)) }
+    };
+}
+
+/// Those that need no tables beside them, and differ in kind; the first is shown when none is named.
+pub const COMPILED: &[Compiled] = &[
+    shipped!("scenarios/skarnby-bank.yaml"),
+    shipped!("scenarios/harrowmere-moor.yaml"),
+    shipped!("scenarios/ombrel-reef.yaml"),
+    shipped!("scenarios/aldrun-river.yaml"),
+    shipped!("scenarios/varrow-island.yaml"),
+];
 
 /// What reading a model came to.
 pub enum Reading {
@@ -39,6 +51,13 @@ pub fn read(path: Option<&Path>) -> Reading {
             reading(loaded, sha256(&found.bytes), || found.tables.into_read())
         }
         Err(error) => Reading::Unreadable(format!("{error:#}")),
+    }
+}
+
+impl Compiled {
+    /// Its text.
+    pub fn text(&self) -> &'static str {
+        self.text
     }
 }
 

@@ -2,14 +2,13 @@
 
 use crate::analysis::assess::assess;
 use crate::analysis::equilibria::{Budget, all};
-use crate::analysis::passage::{Found, Ways, identify};
+use crate::analysis::passage::{Found, Passage, Ways, identify};
 use crate::analysis::prepare::Prepared;
 use crate::model::Model;
-use crate::report::table::{Names, Scene, Solved};
+use crate::report::table::{Limits, Names, Scene, Solved};
 
-/// Boxes on one face, beyond which the search goes on to the next. A face of a model that can be settled at all takes
-/// tens to thousands.
-pub const BOXES: usize = 50_000;
+/// Boxes on one face.
+pub const BOXES: usize = Limits::BOXES;
 
 /// Finds a scenario's equilibria and says everything of them.
 pub fn scene(model: &Model, prepared: &Prepared, scenario: usize, budget: &Budget<'_>) -> Scene {
@@ -29,6 +28,17 @@ pub fn scene(model: &Model, prepared: &Prepared, scenario: usize, budget: &Budge
 pub fn names<'s>(ways: &mut Ways, scenes: impl IntoIterator<Item = &'s Scene>, stop: &dyn Fn() -> bool) -> Names {
     let all_found: Vec<Option<Found<'_>>> = scenes.into_iter().map(found).collect();
     Names::new(&identify(ways, &all_found, stop))
+}
+
+/// From the first scenario with a list to each other one that has a list; `None` for the rest.
+pub fn passages(ways: &mut Ways, scenes: &[Scene], stop: &dyn Fn() -> bool) -> Vec<Option<Passage>> {
+    let all_found: Vec<Option<Found<'_>>> = scenes.iter().map(found).collect();
+    let first = all_found.iter().position(Option::is_some);
+    let passage = |(place, second): (usize, &Option<Found<'_>>)| {
+        let reference = first.filter(|&first| first != place)?;
+        Some(ways.passage([all_found[reference]?, (*second)?], stop))
+    };
+    all_found.iter().enumerate().map(passage).collect()
 }
 
 fn found(scene: &Scene) -> Option<Found<'_>> {

@@ -9,15 +9,17 @@ use crate::analysis::passage::Ways;
 use crate::analysis::paths::{Ended, follow};
 use crate::analysis::prepare::Prepared;
 use crate::app::study::{TriedSet, World};
-use crate::app::task::{Painting, Release};
+use crate::app::task::{Compared, Found, Painting, Release};
 use crate::app::{Answer, Read, Source, Task};
-use crate::model::Original;
+use crate::model::{Model, Name, Original, ParameterId};
 use crate::report::course::{Course, arrival, until_after};
 use crate::report::sketch::{Picture, View};
+use crate::report::table::{Names, Scene};
 
 use super::clock::Deadline;
+use super::files::from_home;
 use super::models::{COMPILED, Reading, compiled, read};
-use super::solver::{BOXES, names, scene};
+use super::solver::{BOXES, names, passages, scene};
 use super::workers::Threads;
 
 /// What a task is done with.
@@ -33,7 +35,7 @@ pub struct Means<'m> {
 /// Does a task.
 pub fn perform(task: Task, means: &Means<'_>) -> Answer {
     match task {
-        Task::Read(source, edition) => Answer::Read(read_source(&source, edition)),
+        Task::Read(source, set, edition) => Answer::Read(read_source(&source, &set, edition)),
         Task::Prepare(world, tried, edition) => Answer::Prepared(prepare(&world, &tried, edition)),
         Task::Solve { world, scenario, budget } => {
             let deadline = Deadline::after(budget);
@@ -51,6 +53,9 @@ pub fn perform(task: Task, means: &Means<'_>) -> Answer {
             let scenes = scenes.iter().map(|found| &*found.0);
             Answer::Named(Arc::new(names(&mut ways, scenes, &|| (means.stop)() || deadline.is_past())))
         }
+        Task::Compare { world, scenes, names, budget } => {
+            Answer::Compared(Arc::new(compare(world, &scenes, names, budget, means)))
+        }
         Task::Paint(painting) => Answer::Painted(paint(&painting)),
         Task::Follow { world, scenario, start, until } => {
             let subject = world.prepared.subject(&world.original.model, scenario).ok();
@@ -60,33 +65,74 @@ pub fn perform(task: Task, means: &Means<'_>) -> Answer {
     }
 }
 
-fn read_source(source: &Source, edition: u64) -> Read {
+/// Follows what was found in the first of several scenarios to each of the others.
+fn compare(world: Arc<World>, scenes: &[Found], ids: Vec<Vec<String>>, budget: f64, means: &Means<'_>) -> Compared {
+    let deadline = Deadline::after(budget);
+    let mut ways = Ways::new(&world.original.model, &world.prepared);
+    let scenes: Vec<Scene> = scenes.iter().map(|found| (*found.0).clone()).collect();
+    let stop = || (means.stop)() || deadline.is_past();
+    let passages = passages(&mut ways, &scenes, &stop);
+    let own_names = names(&mut ways, &scenes, &stop);
+    let mut all: Vec<String> = Vec::new();
+    for id in ids.iter().flatten() {
+        if !all.contains(id) {
+            all.push(id.clone());
+        }
+    }
+    let names = Names { unfollowed: vec![Vec::new(); ids.len()], ids };
+    Compared { world, scenes, names, own_names, passages, ids: all }
+}
+
+fn read_source(source: &Source, set: &[(String, f64)], edition: u64) -> Read {
     let reading = match source {
-        Source::File(path) => read(Some(path)),
+        Source::File(path) => read(Some(&from_home(path))),
         Source::Compiled(index) => match COMPILED.get(*index) {
             Some(model) => compiled(model),
             None => return Read::Unreadable("there is no such model".to_owned()),
         },
     };
     match reading {
-        Reading::Model(original) => match Prepared::new(&original.model, &[]) {
-            Ok(prepared) => Read::Ready(Arc::new(World { edition, original: *original, prepared })),
-            Err(found) => Read::Wrong(original.model.sources.clone(), found),
-        },
+        Reading::Model(original) => {
+            let set = known(&original.model, set);
+            match Prepared::new(&original.model, &set) {
+                Ok(prepared) => Read::Ready(Arc::new(World { edition, original: *original, prepared, set })),
+                Err(found) => Read::Wrong(original.model.sources.clone(), found),
+            }
+        }
         Reading::Wrong(sources, found) => Read::Wrong(sources, found),
         Reading::Unreadable(reason) => Read::Unreadable(reason),
     }
+}
+
+/// The parameters of those names. Another model than the one that they were given for may lack some; the state says so.
+fn known(model: &Model, set: &[(String, f64)]) -> Vec<(ParameterId, f64)> {
+    let find = |name: &str| match model.names.get(name) {
+        Some(Name::Parameter(id)) => Some(*id),
+        _ => None,
+    };
+    let allowed = |id: ParameterId, value| model.parameters.get(id.0).is_some_and(|one| one.ruled_out(value).is_none());
+    let mut found: Vec<(ParameterId, f64)> = Vec::new();
+    for (id, value) in set.iter().filter_map(|(name, value)| Some((find(name)?, *value))) {
+        if allowed(id, value) {
+            found.retain(|(other, _)| *other != id);
+            found.push((id, value));
+        }
+    }
+    found
 }
 
 /// The model with the tried scenario at its end, in the search box of the file.
 fn prepare(world: &World, tried: &TriedSet, edition: u64) -> Result<Arc<World>, String> {
     let Original { model, sha256, tables } = &world.original;
     let model = model.with_values_over(tried.base, &tried.values);
-    match Prepared::new(&model, &[]) {
+    // What is tried goes over what is set for the session, as everything does that comes later.
+    let is_tried = |id: ParameterId| tried.values.iter().any(|(other, _)| *other == id);
+    let set: Vec<_> = world.set.iter().filter(|(id, _)| !is_tried(*id)).copied().collect();
+    match Prepared::new(&model, &set) {
         Ok(mut prepared) => {
             prepared.bounds.clone_from(&world.prepared.bounds);
             let original = Original { model, sha256: sha256.clone(), tables: tables.clone() };
-            Ok(Arc::new(World { edition, original, prepared }))
+            Ok(Arc::new(World { edition, original, prepared, set }))
         }
         Err(found) => Err(found.first().map_or_else(String::new, |problem| problem.message.clone())),
     }

@@ -57,10 +57,11 @@ fn the_first_model_is_sound_and_raises_no_warning() {
 
 #[test]
 fn what_is_shown_is_current() {
-    let [shown, wrong, table, sketch] = blocks("text")[..] else { panic!("four blocks of output") };
+    let [shown, wrong, table, compared, sketch] = blocks("text")[..] else { panic!("five blocks of output") };
     assert_eq!(run("check", &model()), (format!("{shown}\n"), Some(0)));
     assert_eq!(run("check", &model().replace("a*H*P", "a*h*P")), (format!("{wrong}\n"), Some(1)));
     assert_eq!(run("table", &model()), (format!("{table}\n"), Some(0)));
+    assert_eq!(run("compare", &model()), (format!("{compared}\n"), Some(0)));
     let half = ["sketch", "velmo.yaml", "--scenario", "half the nets", "--size", "78x22"];
     assert!(README.contains("sketch velmo.yaml --scenario \"half the nets\" --size 78x22`"));
     assert_eq!(run_with(&half, &model()), (format!("{sketch}\n"), Some(0)));
@@ -128,6 +129,6 @@ fn every_exit_code_is_as_listed() {
         (Exit::Interrupted, "interrupted"),
     ];
     for (exit, meaning) in listed {
-        assert!(README.contains(&format!("\n| {} | {meaning}", exit as u8)), "{exit:?}");
+        assert!(README.contains(&format!("\n| {} | {meaning}", exit.number())), "{exit:?}");
     }
 }

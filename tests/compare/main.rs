@@ -4,5 +4,11 @@
 #[path = "../common/mod.rs"]
 mod common;
 
+mod command;
+mod formats;
 mod passage;
 mod support;
+#[path = "../table_support/mod.rs"]
+mod table_support;
+#[path = "../tables/tex.rs"]
+mod tex;

@@ -179,7 +179,9 @@ impl<'w, 'f> Walk<'w, 'f> {
         }
         let (tangent, orientation) = self.curve.tangent(&at, &self.here.tangent).ok_or(())?;
         let is_gentle = corrected.first <= OFF[1] * length.max(SHORTEST_STEP);
-        if !is_gentle || dot(&tangent, &self.here.tangent) < STRAIGHT {
+        // Where s rises at both ends and is lower all the same, the curve turned twice between.
+        let is_even = tangent[m] * forward <= 0.0 || (at[m] - self.s()) * forward >= 0.0;
+        if !is_gentle || !is_even || dot(&tangent, &self.here.tangent) < STRAIGHT {
             return Err(());
         }
         Ok(Trial { point: Point { at, tangent }, corrected, orientation, has_landed })
@@ -330,7 +332,9 @@ impl<'w, 'f> Walk<'w, 'f> {
             let probe = self.ahead(stride, &self.here.tangent);
             let Some((mut direction, orientation)) = self.curve.tangent(&probe, &self.here.tangent) else { continue };
             if orientation != self.orientation {
-                direction.iter_mut().for_each(|part| *part = -*part);
+                for part in &mut direction {
+                    *part = -*part;
+                }
             }
             let mut at = self.ahead(stride, &direction);
             let Some(corrected) = self.curve.correct(&mut at, &direction) else { continue };

@@ -1,8 +1,11 @@
 //! What comes from outside: answers, files that were written, a model that has changed.
 
+use std::path::PathBuf;
 use std::sync::Arc;
 
 use super::acts::reload;
+use super::reread::{reread, shown};
+use super::{chooser, entry, record, session};
 use crate::app::study::{Slot, World};
 use crate::app::task::{Answer, Task};
 use crate::app::{App, Dialog, Effect, JobId, Msg, Read, Screen, Source, Study};
@@ -12,8 +15,13 @@ pub(super) fn arrive(app: &mut App, msg: Msg) -> Vec<Effect> {
     match msg {
         Msg::Answered(id, answer) => return answered(app, id, answer),
         Msg::Advanced(id, progress) => app.desk.advance(id, progress),
-        Msg::Written(Ok(path)) => app.say(format!("written to {}", path.display())),
-        Msg::Written(Err(reason)) => app.complain(reason),
+        Msg::Written(what) => record::written(app, what),
+        Msg::Completed(asked, completion) => entry::completed(app, &asked, completion),
+        Msg::Suggested(path) => app.suggestion = Some(path),
+        Msg::Listed(listing, entry) => chooser::listed(app, listing, entry),
+        Msg::AllListed(listing) => chooser::all_listed(app, listing),
+        Msg::Recalled(source, session) => session::recalled(app, &source, session),
+        Msg::Remarked(text) => app.say(text),
         Msg::Changed => reload(app),
         Msg::Struck(_) | Msg::Pasted(_) | Msg::Resized(_) | Msg::Resumed => {}
     }
@@ -22,7 +30,7 @@ pub(super) fn arrive(app: &mut App, msg: Msg) -> Vec<Effect> {
 
 fn answered(app: &mut App, id: JobId, answer: Answer) -> Vec<Effect> {
     match (app.desk.take(id, answer.clone()), answer) {
-        (Some(Task::Read(source, _)), Answer::Read(read)) => return read_model(app, source, read),
+        (Some(Task::Read(source, ..)), Answer::Read(read)) => return read_model(app, source, read),
         (Some(Task::Solve { world, .. }), Answer::Solved(scene)) => {
             if let Some(study) = &mut app.study {
                 study.take(&world, *scene);
@@ -48,14 +56,17 @@ fn read_model(app: &mut App, source: Source, read: Read) -> Vec<Effect> {
     let is_again = app.study.as_ref().is_some_and(|study| study.source == source);
     match read {
         Read::Ready(world) => {
-            let tables = world.original.tables.iter().map(|(name, _)| name.clone()).collect();
+            // What was wrong with the file has been mended.
+            if matches!(app.dialog, Some(Dialog::Message { .. })) {
+                app.dialog = None;
+            }
             if is_again {
-                again(app, &world);
-                app.say("the file was read again");
+                reread(app, &source, &world);
             } else {
                 open(app, source.clone(), &world);
             }
-            return vec![Effect::Watch(source, tables)];
+            let watch = Effect::Watch(source.clone(), Arc::clone(&world));
+            return if is_again { vec![watch] } else { vec![watch, Effect::Recall(source, world)] };
         }
         Read::Wrong(sources, found) => {
             let lines = found.iter().flat_map(|one| {
@@ -75,39 +86,30 @@ fn read_model(app: &mut App, source: Source, read: Read) -> Vec<Effect> {
 }
 
 fn open(app: &mut App, source: Source, world: &Arc<World>) {
-    let scenarios = &world.original.model.scenarios;
-    let is_wanted = |name: &String| app.only.is_empty() || app.only.contains(name);
-    let shown: Vec<usize> = (0..scenarios.len()).filter(|&k| is_wanted(&scenarios[k].name)).collect();
-    app.study = Some(Study::new(source, Arc::clone(world), shown));
+    let model = &world.original.model;
+    app.study = Some(Study::new(source, Arc::clone(world), shown(model, &app.only)));
     app.screen = Screen::Equilibria;
     app.notice = None;
+    app.dialog = None;
+    if let (Some(study), Some((_, scenario))) = (&mut app.study, &app.copy) {
+        let at =
+            study.slots.iter().position(|slot| slot.name() == scenario).filter(|_| is_copy(&app.copy, &study.source));
+        study.current = at.unwrap_or(0);
+    }
+    let unknown: Vec<&str> =
+        app.set.iter().map(|(name, _)| name.as_str()).filter(|name| !model.names.contains_key(*name)).collect();
+    if !unknown.is_empty() {
+        app.complain(format!("this model has no parameter {}, which was set at the start", unknown.join(", ")));
+    }
 }
 
-/// Keeps the place: scenarios by name, the equilibrium by name, the sketch as it is; what was found is shown until it is
-/// found again.
-fn again(app: &mut App, world: &Arc<World>) {
-    let Some(old) = app.study.take() else { return };
-    let model = &world.original.model;
-    let current = old.slot().map(|slot| slot.name().to_owned());
-    let chosen = old.name_of_chosen();
-    let mut study = Study::new(old.source.clone(), Arc::clone(world), 0..model.scenarios.len());
-    let is_alike = old.model().species == model.species;
-    for slot in &mut study.slots {
-        let before = old.slots.iter().find(|before| before.name() == slot.name());
-        slot.found = before.filter(|_| is_alike).and_then(|before| before.found.clone());
-    }
-    study.current = study.slots.iter().position(|slot| Some(slot.name()) == current.as_deref()).unwrap_or(0);
-    if is_alike {
-        study.sketch = old.sketch.clone();
-        study.interacting = old.interacting;
-        study.knock = old.knock;
-    }
-    study.names = study.slots.iter().map(|slot| names_before(&old, slot.name())).collect();
-    study.choose_named(chosen.as_deref());
-    app.study = Some(study);
+/// Whether a model is the copy that was recorded last: it is opened for its new scenario.
+fn is_copy(copy: &Option<(PathBuf, String)>, source: &Source) -> bool {
+    copy.as_ref().is_some_and(|(path, _)| *source == Source::File(path.clone()))
 }
 
-/// The tried scenario has its equations: it takes the last slot.
+/// The tried scenario has its equations: it takes the last slot. What was found with other values is shown until it is
+/// searched.
 fn prepared(app: &mut App, world: Arc<World>) {
     let Some(study) = &mut app.study else { return };
     if world.edition != study.tried.edition {
@@ -126,12 +128,8 @@ fn prepared(app: &mut App, world: Arc<World>) {
     study.slots.push(Slot { world, scenario, found });
     study.names.resize(of_file + 1, Vec::new());
     study.names[of_file] = names;
-    study.current = of_file;
+    if std::mem::take(&mut study.tried.follow) {
+        study.current = of_file;
+    }
     study.choose_named(wanted.as_deref());
-}
-
-/// Names that a scenario's equilibria had before the file changed.
-fn names_before(old: &Study, scenario: &str) -> Vec<String> {
-    let place = old.slots.iter().position(|slot| slot.name() == scenario);
-    place.map_or_else(Vec::new, |place| old.names(place).to_vec())
 }

@@ -1,91 +1,94 @@
 //! Trying values: every change makes another tried scenario, and can be taken back.
 
+use super::session;
 use crate::app::action::{Action, Step};
 use crate::app::study::TriedSet;
+use crate::app::trial::{COARSE, neat, reach, step};
 use crate::app::{App, Study};
-use crate::model::{Parameter, ParameterId};
 
 /// Changes that can be taken back.
 const MOST_CHANGES: usize = 1000;
 
 pub(super) fn act(app: &mut App, action: Action) {
     match action {
-        Action::Fine(step) => nudge(app, step, 1.0),
-        Action::Coarse(step) => nudge(app, step, 10.0),
+        Action::Fine(way) => nudge(app, way, 1.0),
+        Action::Coarse(way) => nudge(app, way, COARSE),
         Action::Undo => back(app),
         Action::Redo => forth(app),
-        Action::Forget => {
-            if let Some(study) = &app.study {
-                let base = study.tried.now.base;
-                change(app, TriedSet { base, values: Vec::new() });
-            }
-        }
+        Action::Forget => forget(app),
         _ => {}
     }
 }
 
-fn nudge(app: &mut App, step: Step, steps: f64) {
+/// The tried values of the scenario that is looked at come into sight together with their screen.
+pub(super) fn show(study: &mut Study) {
+    let is_of_this = !study.tried.now.values.is_empty() && study.base() == study.tried.now.base;
+    if let Some(slot) = study.tried_slot().filter(|_| is_of_this) {
+        turn_to(study, slot);
+    }
+}
+
+/// Looks at another slot; the selected equilibrium stays the same where there is one of its name.
+pub(super) fn turn_to(study: &mut Study, slot: usize) {
+    let name = study.name_of_chosen();
+    study.current = slot;
+    study.choose_named(name.as_deref());
+}
+
+fn nudge(app: &mut App, way: Step, steps: f64) {
     let Some(study) = &app.study else { return };
-    let Some(parameter) = study.model().parameters.get(study.parameter) else { return };
-    let Some(value) = value(study, study.parameter) else { return };
-    let step_size = fine_step(parameter) * steps;
-    let signed = if step == Step::Back { -step_size } else { step_size };
-    set(app, neat(value + signed, step_size));
-}
-
-/// The value of a parameter in the slot that is looked at, tried or not.
-pub(super) fn value(study: &Study, parameter: usize) -> Option<f64> {
-    let tried = study.tried.now.values.iter().find(|(id, _)| id.0 == parameter).map(|(_, value)| *value);
-    let base = base(study);
-    let own = || study.model().values(base, &[]).ok()?.get(parameter).copied();
-    tried.filter(|_| base == study.tried.now.base).or_else(own)
-}
-
-/// The scenario of the file that values are set over.
-fn base(study: &Study) -> usize {
-    if study.is_tried(study.current) { study.tried.now.base } else { study.slot().map_or(0, |slot| slot.scenario) }
-}
-
-/// A hundredth of the range, else of the value, rounded to 1, 2 or 5 times a power of ten.
-fn fine_step(parameter: &Parameter) -> f64 {
-    let width = parameter.range.as_ref().map_or(parameter.value.abs(), |range| range.value[1] - range.value[0]);
-    let wanted = if width > 0.0 && width.is_finite() { width / 100.0 } else { 0.01 };
-    let decade = 10f64.powf(wanted.log10().floor());
-    let steps = [1.0, 2.0, 5.0, 10.0].map(|step| step * decade);
-    steps.into_iter().find(|&step| step >= wanted * 0.999).unwrap_or(decade)
-}
-
-/// A value without the digits that adding steps leaves: a thousandth of the step is kept.
-fn neat(value: f64, step: f64) -> f64 {
-    let decimals = (3.0 - step.log10().floor()).clamp(0.0, 300.0);
-    let text = format!("{value:.*}", crate::analysis::field::nearest(decimals, 300));
-    text.parse().unwrap_or(value) + 0.0
+    let Some((id, parameter)) = study.parameter() else { return };
+    let Some(value) = study.value(id) else { return };
+    let size = step(parameter) * steps;
+    let wanted = neat(if way == Step::Back { value - size } else { value + size }, size);
+    let [low, high] = reach(parameter, value);
+    let reached = wanted.max(low).min(high);
+    if reached == value {
+        let end = if way == Step::Back { "lower" } else { "upper" };
+        let name = &parameter.name;
+        app.complain(format!("{name} = {value} is the {end} end that steps go to; what is beyond has to be typed"));
+    } else {
+        set(app, reached);
+    }
 }
 
 /// Sets the selected parameter to a value; says why not where it is ruled out.
 pub(super) fn set(app: &mut App, value: f64) {
     let Some(study) = &app.study else { return };
-    let id = ParameterId(study.parameter);
-    let Some(parameter) = study.model().parameters.get(id.0) else { return };
+    let Some((id, parameter)) = study.parameter() else { return };
     if let Some(reason) = parameter.ruled_out(value) {
         app.complain(reason);
         return;
     }
-    let base = base(study);
+    let base = study.base();
     let mut values = if base == study.tried.now.base { study.tried.now.values.clone() } else { Vec::new() };
     values.retain(|(other, _)| *other != id);
-    let own = study.model().values(base, &[]).ok().and_then(|values| values.get(id.0).copied());
-    if own != Some(value) {
+    if study.own_value(base, id) != Some(value) {
         values.push((id, value));
         values.sort_by_key(|(id, _)| *id);
     }
     change(app, TriedSet { base, values });
 }
 
-fn change(app: &mut App, to: TriedSet) {
+fn forget(app: &mut App) {
+    let Some(study) = &app.study else { return };
+    let base = study.tried.now.base;
+    if study.tried.now.values.is_empty() {
+        app.say("no values are tried");
+    } else {
+        change(app, TriedSet { base, values: Vec::new() });
+        app.say("the tried values are given up");
+    }
+}
+
+pub(super) fn change(app: &mut App, to: TriedSet) {
     let Some(study) = &mut app.study else { return };
     if study.tried.now == to {
         return;
+    }
+    // What was offered and not taken up can be come back to.
+    if let Some(offered) = session::offered(study) {
+        study.tried.undo.push(offered);
     }
     let before = std::mem::replace(&mut study.tried.now, to);
     study.tried.undo.push(before);
@@ -127,15 +130,22 @@ fn renew(app: &mut App) {
     let edition = app.edition;
     let Some(study) = &mut app.study else { return };
     study.tried.edition = edition;
+    study.tried.follow = true;
     if study.tried.now.values.is_empty() {
-        let of_file = study.of_file();
-        let name = study.name_of_chosen();
-        study.slots.truncate(of_file);
-        let base = study.tried.now.base;
-        if study.current >= of_file {
-            study.current = study.slots.iter().position(|slot| slot.scenario == base).unwrap_or(0);
-        }
-        study.names.truncate(of_file);
-        study.choose_named(name.as_deref());
+        drop_slot(study);
     }
+}
+
+/// Nothing is tried any more: its scenario comes back into sight.
+fn drop_slot(study: &mut Study) {
+    let of_file = study.of_file();
+    let name = study.name_of_chosen();
+    let was_in_sight = study.is_tried(study.current);
+    study.slots.truncate(of_file);
+    if was_in_sight {
+        let base = study.tried.now.base;
+        study.current = study.slots.iter().position(|slot| slot.scenario == base).unwrap_or(0);
+    }
+    study.names.truncate(of_file);
+    study.choose_named(name.as_deref());
 }

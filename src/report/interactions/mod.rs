@@ -150,7 +150,7 @@ fn effect(number: f64, bounds: Option<&Interval>) -> Effect {
     let by_number = match number {
         x if x > 0.0 => Sign::Positive,
         x if x < 0.0 => Sign::Negative,
-        x if x == 0.0 => Sign::Zero,
+        0.0 => Sign::Zero,
         _ => Sign::Undecided,
     };
     let Some(side) = bounds else { return Effect { number, sign: by_number, proved: false } };

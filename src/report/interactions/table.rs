@@ -66,7 +66,8 @@ pub fn text(table: &Interactions, model: &Model, style: Style) -> String {
     let columns = head_width(table, model) + n * COLUMN;
     // Wide enough for the title as well.
     let size = Size { columns: columns.max(title(table, model, usize::MAX).width()).max(80), rows: n + ABOVE + BELOW };
-    drawing(table, model, [0, 0], size, style).lines(false).iter().map(|line| format!("{line}\n")).collect()
+    let lines = drawing(table, model, [0, 0], size, style).lines(false).join("\n");
+    format!("{}\n", lines.trim_end())
 }
 
 /// The signs of tables that are shown together, each with its meaning in a word or two.

@@ -70,7 +70,7 @@ impl Fields {
 }
 
 /// A field's name and its value.
-type Field = (&'static str, Value);
+pub(in crate::report) type Field = (&'static str, Value);
 
 /// What holds for all rows of a scenario.
 fn context(table: &Table<'_>, scene: &Scene, solved: &Solved, ids: &[String]) -> Vec<Field> {
@@ -99,7 +99,7 @@ fn failed(problems: &[String]) -> Vec<Field> {
 }
 
 /// What holds for the whole table.
-fn constants(table: &Table<'_>) -> Vec<Field> {
+pub(in crate::report) fn constants(table: &Table<'_>) -> Vec<Field> {
     let facts = provenance::facts(table, whole).into_iter().map(|fact| (fact.key, joined(&fact.texts)));
     let title = [("model", table.model.title.value.clone().into())];
     let end = [("interrupted", table.interrupted.into()), ("caution", words::CAUTION.into())];

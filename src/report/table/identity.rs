@@ -37,7 +37,7 @@ impl Names {
     }
 
     /// What is to be said of those of a scenario that could not be followed: a sentence for each reason.
-    pub(super) fn sentences(&self, scene: usize) -> Vec<String> {
+    pub(in crate::report) fn sentences(&self, scene: usize) -> Vec<String> {
         let open = self.unfollowed.get(scene).map_or(&[][..], Vec::as_slice);
         let mut groups: Vec<(String, Vec<&str>)> = Vec::new();
         for (id, reason) in open {

@@ -40,7 +40,7 @@ pub fn latex(table: &Table<'_>, page: Page) -> String {
     parts.join("\n\n") + "\n"
 }
 
-fn heading(table: &Table<'_>, page: &Page) -> String {
+pub(in crate::report) fn heading(table: &Table<'_>, page: &Page) -> String {
     let mut rows = Vec::new();
     for fact in provenance::facts(table, plain) {
         rows.extend(fact.texts.iter().map(|text| format!("{} & {} \\\\\n", fact.label, escaped(text, page))));
@@ -64,7 +64,7 @@ fn scenario(table: &Table<'_>, scene: &Scene, solved: &Solved, ids: &[String], p
 }
 
 /// The equilibria in as many tables as their columns need.
-fn grids(sheet: &Sheet, page: &Page) -> Vec<String> {
+pub(in crate::report) fn grids(sheet: &Sheet, page: &Page) -> Vec<String> {
     let columns = filled(&sheet.heads, &sheet.rows);
     let letters = |text: &str| text.chars().count();
     let width = |&column: &usize| {
@@ -79,7 +79,7 @@ fn grids(sheet: &Sheet, page: &Page) -> Vec<String> {
     chosen.map(|columns| grid(sheet, &columns, page)).collect()
 }
 
-fn grid(sheet: &Sheet, columns: &[usize], page: &Page) -> String {
+pub(in crate::report) fn grid(sheet: &Sheet, columns: &[usize], page: &Page) -> String {
     let heads: Vec<&Head> = columns.iter().filter_map(|&column| sheet.heads.get(column)).collect();
     let letter = |head: &&Head| if head.align == Align::Point { 'r' } else { 'l' };
     let line = |cells: &mut dyn Iterator<Item = String>| format!("{} \\\\\n", cells.collect::<Vec<_>>().join(" & "));
@@ -119,7 +119,7 @@ const BREAKABLE: usize = 30;
 const PIECE: usize = 8;
 
 /// A text that TeX prints as it is, on one line.
-fn escaped(text: &str, page: &Page) -> String {
+pub(in crate::report) fn escaped(text: &str, page: &Page) -> String {
     let clean = page.clean(text);
     let word = |word: &str| {
         let letters: Vec<String> = word.chars().map(letter).collect();

@@ -22,7 +22,7 @@ const BESIDE: usize = 10;
 
 /// What a colour repeats; it never says anything alone.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
-pub(super) enum Ink {
+pub(in crate::report) enum Ink {
     Plain,
     Proved,
     Numerical,
@@ -41,12 +41,12 @@ impl Ink {
     }
 
     /// The ink of what is proved, or only computed.
-    pub(super) fn of(proven: bool) -> Self {
+    pub(in crate::report) fn of(proven: bool) -> Self {
         if proven { Ink::Proved } else { Ink::Numerical }
     }
 
     /// The text in this ink, where colour is wanted.
-    pub(super) fn paint(self, text: &str, page: &Page) -> String {
+    pub(in crate::report) fn paint(self, text: &str, page: &Page) -> String {
         match self.code().filter(|_| page.color && !text.is_empty()) {
             Some(code) => format!("\u{1b}[{code}m{text}\u{1b}[0m"),
             None => text.to_owned(),
@@ -56,29 +56,35 @@ impl Ink {
 
 /// What stands at one place of a grid.
 #[derive(Clone, Debug, PartialEq)]
-pub(super) struct Cell {
+pub(in crate::report) struct Cell {
     text: String,
     ink: Ink,
 }
 
 impl Cell {
-    pub(super) fn new(text: impl Into<String>) -> Self {
+    pub(in crate::report) fn new(text: impl Into<String>) -> Self {
         Self::inked(text, Ink::Plain)
     }
 
-    pub(super) fn inked(text: impl Into<String>, ink: Ink) -> Self {
+    pub(in crate::report) fn inked(text: impl Into<String>, ink: Ink) -> Self {
         Self { text: text.into(), ink }
     }
 
+    /// The same with more after it.
+    pub(in crate::report) fn and(mut self, more: &str) -> Self {
+        self.text.push_str(more);
+        self
+    }
+
     /// What is to be read there.
-    pub(super) fn text(&self) -> &str {
+    pub(in crate::report) fn text(&self) -> &str {
         &self.text
     }
 }
 
 /// How the cells of a column line up.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
-pub(super) enum Align {
+pub(in crate::report) enum Align {
     Left,
     /// Numbers, by their decimal points.
     Point,
@@ -86,20 +92,20 @@ pub(super) enum Align {
 
 /// What stands above a column of a grid.
 #[derive(Clone, Debug, PartialEq)]
-pub(super) struct Head {
-    pub(super) title: String,
-    pub(super) unit: String,
-    pub(super) align: Align,
+pub(in crate::report) struct Head {
+    pub(in crate::report) title: String,
+    pub(in crate::report) unit: String,
+    pub(in crate::report) align: Align,
 }
 
 impl Head {
-    pub(super) fn new(title: &str, align: Align) -> Self {
+    pub(in crate::report) fn new(title: &str, align: Align) -> Self {
         Self { title: title.to_owned(), unit: String::new(), align }
     }
 }
 
 /// The columns that are not empty in every row.
-pub(super) fn filled(heads: &[Head], rows: &[Vec<Cell>]) -> Vec<usize> {
+pub(in crate::report) fn filled(heads: &[Head], rows: &[Vec<Cell>]) -> Vec<usize> {
     let is_filled = |column: &usize| rows.iter().any(|row| row.get(*column).is_some_and(|cell| !cell.text.is_empty()));
     (0..heads.len()).filter(is_filled).collect()
 }
@@ -113,7 +119,7 @@ struct Block {
 
 /// A grid. Columns that are empty in every row are left out; what does not fit the page goes on below, where the first
 /// column is repeated.
-pub(super) fn grid(heads: &[Head], rows: &[Vec<Cell>], page: &Page) -> String {
+pub(in crate::report) fn grid(heads: &[Head], rows: &[Vec<Cell>], page: &Page) -> String {
     let columns: Vec<Column> =
         filled(heads, rows).into_iter().map(|place| Column::new(&heads[place], rows, place, page)).collect();
     let most = |lines: fn(&Column) -> usize| columns.iter().map(lines).max().unwrap_or(0);
@@ -130,7 +136,7 @@ pub(super) fn grid(heads: &[Head], rows: &[Vec<Cell>], page: &Page) -> String {
 /// Columns of these widths divided among parts that fit a width; the first column is in every part.
 ///
 /// Each part has one more column at least, or one wider than the page would never be shown.
-pub(super) fn parts(widths: &[usize], width: usize) -> Vec<Vec<usize>> {
+pub(in crate::report) fn parts(widths: &[usize], width: usize) -> Vec<Vec<usize>> {
     let Some((first, others)) = widths.split_first() else { return Vec::new() };
     let mut all = vec![vec![0]];
     let mut end = GAP + first;

@@ -35,7 +35,7 @@ pub fn markdown(table: &Table<'_>, page: Page) -> String {
     parts.join("\n\n") + "\n"
 }
 
-fn heading(table: &Table<'_>, page: &Page) -> String {
+pub(in crate::report) fn heading(table: &Table<'_>, page: &Page) -> String {
     let mut lines = vec!["| what | how |".to_owned(), "|:--|:--|".to_owned()];
     for fact in provenance::facts(table, plain) {
         lines.extend(fact.texts.iter().map(|text| format!("| {} | {} |", fact.label, escaped(text, page))));
@@ -61,7 +61,7 @@ fn scenario(table: &Table<'_>, scene: &Scene, solved: &Solved, ids: &[String], p
     parts
 }
 
-fn grid(sheet: &Sheet, page: &Page) -> String {
+pub(in crate::report) fn grid(sheet: &Sheet, page: &Page) -> String {
     let columns = filled(&sheet.heads, &sheet.rows);
     let heads: Vec<&Head> = columns.iter().filter_map(|&column| sheet.heads.get(column)).collect();
     let title = |head: &&Head| {
@@ -82,7 +82,7 @@ fn line(cells: impl Iterator<Item = String>) -> String {
 }
 
 /// A text that Markdown shows as it is, on one line.
-fn escaped(text: &str, page: &Page) -> String {
+pub(in crate::report) fn escaped(text: &str, page: &Page) -> String {
     let clean = page.clean(text);
     let mut out = String::with_capacity(clean.len() + 8);
     for word in clean.split_whitespace() {

@@ -7,8 +7,8 @@
 //! not by words, in every format; every format carries what is needed to make the table again, and the caution.
 //!
 //! `identity` names equilibria, `number` rounds, `words` and `scene` have what all formats say, `paths` says where paths
-//! go, `provenance` what the table is of, `layout` makes lines, `guide` explains the columns, `glossary` those shown, `facts`
-//! has one equilibrium for a screen.
+//! go, `provenance` what the table is of, `command` how to make it again, `form` which formats there are, `layout` makes
+//! lines, `guide` explains the columns, `glossary` those shown, `facts` has one equilibrium for a screen.
 //!
 //! The JSON has the contract's keys in the contract's order, and some of its own after them:
 //!
@@ -19,30 +19,34 @@
 //!   […]}`; `names`, sentences on equilibria with a new name that may be old ones, where there are any
 //! - at the end: `run`, `{"command", "set": {name: number}, "budget": {"seconds", "boxes"}, "interrupted"}`; `caution`
 
-mod columns;
-mod csv;
+pub(in crate::report) mod columns;
+mod command;
+pub(in crate::report) mod csv;
 mod data;
 mod facts;
+mod form;
 mod glossary;
 mod guide;
 mod identity;
-mod latex;
-mod layout;
-mod markdown;
+pub(in crate::report) mod latex;
+pub(in crate::report) mod layout;
+pub(in crate::report) mod markdown;
 mod number;
-mod paths;
-mod provenance;
-mod scene;
+pub(in crate::report) mod paths;
+pub(in crate::report) mod provenance;
+pub(in crate::report) mod scene;
 mod selection;
-mod sheet;
-mod text;
-mod words;
+pub(in crate::report) mod sheet;
+pub(in crate::report) mod text;
+pub(in crate::report) mod words;
 
 pub use columns::{COLUMNS, Column, Shown, Unit, columns};
+pub use command::Command;
 pub use csv::csv;
 pub(super) use csv::line;
 pub use data::json;
 pub use facts::{Case, Fact};
+pub use form::{FORMS, Form, pretty, written};
 pub use guide::guide;
 pub use identity::Names;
 pub(in crate::report) use identity::{percent, why};
@@ -99,6 +103,14 @@ pub struct Limits {
     pub seconds: f64,
     /// Boxes on each face.
     pub boxes: usize,
+}
+
+impl Limits {
+    /// Boxes on one face, beyond which the search goes on to the next. A face of a model that can be settled at all takes
+    /// tens to thousands.
+    pub const BOXES: usize = 50_000;
+    /// Seconds that a scenario may take where nothing is said.
+    pub const SECONDS: f64 = 10.0;
 }
 
 /// One scenario, and what came of it.
@@ -203,13 +215,25 @@ impl<'t> Table<'t> {
         place.map_or_else(Vec::new, |place| self.names.sentences(place))
     }
 
-    fn rows<'a>(&'a self, scene: &Scene, solved: &'a Solved, ids: &'a [String]) -> Vec<Row<'a>> {
+    pub(in crate::report) fn rows<'a>(&'a self, scene: &Scene, solved: &'a Solved, ids: &'a [String]) -> Vec<Row<'a>> {
         let list = solved.equilibria.list.iter().enumerate();
         list.map(|(place, equilibrium)| Row { table: self, scenario: scene.scenario, solved, ids, place, equilibrium })
             .collect()
     }
 
-    fn symbol(&self, species: usize) -> Option<&'t str> {
+    /// One equilibrium of a scenario as a row.
+    pub(in crate::report) fn row<'a>(
+        &'a self,
+        scene: &Scene,
+        solved: &'a Solved,
+        ids: &'a [String],
+        place: usize,
+    ) -> Option<Row<'a>> {
+        let equilibrium = solved.equilibria.list.get(place)?;
+        Some(Row { table: self, scenario: scene.scenario, solved, ids, place, equilibrium })
+    }
+
+    pub(in crate::report) fn symbol(&self, species: usize) -> Option<&'t str> {
         self.model.species.get(species).map(|species| species.symbol.as_str())
     }
 
@@ -229,12 +253,12 @@ impl<'t> Table<'t> {
 }
 
 /// A number that reads back the same; without a minus on zero, null where it is not finite.
-fn exact(x: f64) -> Value {
+pub(in crate::report) fn exact(x: f64) -> Value {
     // −0 + 0 = 0.
     (x + 0.0).into()
 }
 
 /// The same, and null where there is none.
-fn optional(x: Option<f64>) -> Value {
+pub(in crate::report) fn optional(x: Option<f64>) -> Value {
     x.map_or(Value::Null, exact)
 }

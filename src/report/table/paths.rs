@@ -17,16 +17,16 @@ const MOST_NAMED: usize = 8;
 
 /// What is needed to name where a path ends.
 #[derive(Clone, Copy, Debug)]
-pub(super) struct Place<'t> {
-    pub(super) table: &'t Table<'t>,
+pub(in crate::report) struct Place<'t> {
+    pub(in crate::report) table: &'t Table<'t>,
     /// Index of the scenario in the model.
-    pub(super) scenario: usize,
+    pub(in crate::report) scenario: usize,
     /// The names of its equilibria.
-    pub(super) ids: &'t [String],
+    pub(in crate::report) ids: &'t [String],
 }
 
 /// The contract's word for a destination: `E2`, `cycle`, `loss of C`, `not settled`.
-pub(super) fn word(place: Place<'_>, to: &Destination) -> String {
+pub(in crate::report) fn word(place: Place<'_>, to: &Destination) -> String {
     match to {
         Destination::Equilibrium(index) => place.ids.get(*index).cloned().unwrap_or_else(|| "not settled".to_owned()),
         Destination::Cycle(_) => "cycle".to_owned(),
@@ -83,7 +83,7 @@ pub(super) fn from_now(place: Place<'_>, from: &FromNow) -> Value {
 }
 
 /// Where today's stocks lead, in a sentence or two.
-pub(super) fn from_now_in_words(place: Place<'_>, from: &FromNow) -> String {
+pub(in crate::report) fn from_now_in_words(place: Place<'_>, from: &FromNow) -> String {
     let table = place.table;
     let stock = |species: usize, x: f64| named(table, species, &plain(x));
     let today: Vec<String> = table.model.now.iter().map(|now| stock(now.species.0, now.value)).collect();

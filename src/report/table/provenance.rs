@@ -6,17 +6,17 @@ use super::Table;
 use super::number::human;
 
 /// Something that holds for the whole table.
-pub(super) struct Fact {
+pub(in crate::report) struct Fact {
     /// The field of CSV.
-    pub(super) key: &'static str,
+    pub(in crate::report) key: &'static str,
     /// What people read before it.
-    pub(super) label: &'static str,
+    pub(in crate::report) label: &'static str,
     /// One text, or several of a kind.
-    pub(super) texts: Vec<String>,
+    pub(in crate::report) texts: Vec<String>,
 }
 
 /// Every fact but the title, in the order in which they are shown, with numbers written as told.
-pub(super) fn facts(table: &Table<'_>, number: fn(f64) -> String) -> Vec<Fact> {
+pub(in crate::report) fn facts(table: &Table<'_>, number: fn(f64) -> String) -> Vec<Fact> {
     let one = |key, label, text: String| Fact { key, label, texts: vec![text] };
     let tables = table.tables.iter().map(|(name, sha256)| format!("{sha256} {name}")).collect();
     let set = if table.set.is_empty() { Vec::new() } else { vec![set(table)] };
@@ -64,12 +64,12 @@ fn budget(table: &Table<'_>) -> String {
 }
 
 /// A number that reads back the same; zero has no minus.
-pub(super) fn whole(x: f64) -> String {
+pub(in crate::report) fn whole(x: f64) -> String {
     format!("{}", x + 0.0)
 }
 
 /// A number as the file may have it, where that is short.
-pub(super) fn plain(x: f64) -> String {
+pub(in crate::report) fn plain(x: f64) -> String {
     let exact = whole(x);
     if exact.len() <= 7 { exact } else { human(x) }
 }

@@ -10,15 +10,20 @@ use super::number::{human, human_above, human_below};
 use super::{Row, Scene, Solved, Table, paths, words};
 
 /// Undecided parts that are listed for people; the search may have left thousands.
-pub(super) const MOST_LISTED: usize = 12;
+pub(in crate::report) const MOST_LISTED: usize = 12;
 
 /// The scenario's name.
-pub(super) fn name<'m>(model: &'m Model, scene: &Scene) -> &'m str {
+pub(in crate::report) fn name<'m>(model: &'m Model, scene: &Scene) -> &'m str {
     model.scenarios.get(scene.scenario).map_or("", |scenario| &scenario.name)
 }
 
 /// What the scenario changes, with numbers written as told.
-pub(super) fn changes(table: &Table<'_>, scene: &Scene, solved: &Solved, number: fn(f64) -> String) -> String {
+pub(in crate::report) fn changes(
+    table: &Table<'_>,
+    scene: &Scene,
+    solved: &Solved,
+    number: fn(f64) -> String,
+) -> String {
     let Some(scenario) = table.model.scenarios.get(scene.scenario) else { return String::new() };
     let without = scenario.without.iter().map(|name| format!("without {}", name.value));
     let values = scenario
@@ -32,7 +37,7 @@ pub(super) fn changes(table: &Table<'_>, scene: &Scene, solved: &Solved, number:
 }
 
 /// An undecided part of the box, without a full stop.
-pub(super) fn undecided(table: &Table<'_>, one: &Unresolved) -> String {
+pub(in crate::report) fn undecided(table: &Table<'_>, one: &Unresolved) -> String {
     let sides = table.model.species.iter().zip(&one.region).map(|(species, side)| {
         if side.is_point() {
             format!("{} = {}", species.symbol, human(side.lo()))
@@ -48,7 +53,7 @@ pub(super) fn undecided(table: &Table<'_>, one: &Unresolved) -> String {
 }
 
 /// The undecided parts that are listed, and one more entry for those that are not.
-pub(super) fn all_undecided(table: &Table<'_>, solved: &Solved) -> Vec<String> {
+pub(in crate::report) fn all_undecided(table: &Table<'_>, solved: &Solved) -> Vec<String> {
     let open = &solved.equilibria.unresolved;
     let mut listed: Vec<String> = open.iter().take(MOST_LISTED).map(|one| undecided(table, one)).collect();
     if open.len() > MOST_LISTED {
@@ -58,7 +63,7 @@ pub(super) fn all_undecided(table: &Table<'_>, solved: &Solved) -> Vec<String> {
 }
 
 /// Why a scenario failed: each problem with its place.
-pub(super) fn problems(model: &Model, problems: &[Diagnostic]) -> Vec<String> {
+pub(in crate::report) fn problems(model: &Model, problems: &[Diagnostic]) -> Vec<String> {
     let one = |problem: &Diagnostic| {
         let (file, line, column) = position(&model.sources, problem.at);
         format!("{file}:{line}:{column}: {}.", problem.message)
@@ -67,7 +72,7 @@ pub(super) fn problems(model: &Model, problems: &[Diagnostic]) -> Vec<String> {
 }
 
 /// Sentences on where paths go: from today's stocks, then from each unstable state of coexistence; and on names.
-pub(super) fn sentences(
+pub(in crate::report) fn sentences(
     table: &Table<'_>,
     scene: &Scene,
     solved: &Solved,

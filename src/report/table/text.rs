@@ -70,7 +70,7 @@ pub fn text(table: &Table<'_>, page: Page) -> String {
     text
 }
 
-fn heading(table: &Table<'_>, page: &Page) -> String {
+pub(in crate::report) fn heading(table: &Table<'_>, page: &Page) -> String {
     let model = table.model;
     let mut text = page.paragraph("", &model.title.value, 0);
     if let Some(note) = &model.note {
@@ -90,7 +90,7 @@ fn heading(table: &Table<'_>, page: &Page) -> String {
     text
 }
 
-fn title(model: &Model, scene: &Scene, page: &Page) -> String {
+pub(in crate::report) fn title(model: &Model, scene: &Scene, page: &Page) -> String {
     page.paragraph("", &format!("Scenario: {}", scene::name(model, scene)), 0)
 }
 
@@ -116,14 +116,14 @@ fn scenario(table: &Table<'_>, scene: &Scene, solved: &Solved, ids: &[String], p
 }
 
 /// What the search came to.
-fn verdict(equilibria: &Equilibria, page: &Page) -> String {
+pub(in crate::report) fn verdict(equilibria: &Equilibria, page: &Page) -> String {
     let (is_proof, verdict) = words::verdict(equilibria);
     let (word, ink) = if is_proof { (words::proof(true), Ink::Proved) } else { (words::INCOMPLETE, Ink::Undecided) };
     let line = page.paragraph("", &format!("{word}: {verdict}"), 2);
     line.replacen(word, &ink.paint(word, page), 1)
 }
 
-fn undecided(body: &str, page: &Page) -> String {
+pub(in crate::report) fn undecided(body: &str, page: &Page) -> String {
     let word = words::UNDECIDED;
     let lines = page.paragraph("  ?", &format!("{word}: {body}."), 4);
     lines.replacen(word, &Ink::Undecided.paint(word, page), 1)

@@ -15,16 +15,16 @@ pub const CAUTION: &str = "These are local results about a model, no better than
      practice.";
 
 /// Said of a table whose search was broken off.
-pub(super) const INTERRUPTED: &str = "INTERRUPTED: the search was broken off; this is a partial result.";
+pub(in crate::report) const INTERRUPTED: &str = "INTERRUPTED: the search was broken off; this is a partial result.";
 
 /// Before what is said of a list that may lack equilibria.
-pub(super) const INCOMPLETE: &str = "NOT PROVED COMPLETE";
+pub(in crate::report) const INCOMPLETE: &str = "NOT PROVED COMPLETE";
 
 /// Before what is said of a part of the box that stayed open.
-pub(super) const UNDECIDED: &str = "undecided";
+pub(in crate::report) const UNDECIDED: &str = "undecided";
 
 /// The words that tell proofs from numbers, as far as the table has them, with their meanings.
-pub(super) fn meanings(table: &Table<'_>) -> Vec<(&'static str, &'static str)> {
+pub(in crate::report) fn meanings(table: &Table<'_>) -> Vec<(&'static str, &'static str)> {
     let solved = || table.scenes.iter().filter_map(|scene| scene.outcome.as_ref().ok());
     let linear =
         || solved().flat_map(|solved| &solved.assessment.equilibria).filter_map(|one| one.linear.as_ref().ok());
@@ -55,7 +55,7 @@ const PROVED_TYPE: &str = "of a state: exactly one equilibrium lies within the e
      abundance; of a type and of stability: so it is, for the model as written.";
 
 /// The contract's word for what an undecided box probably is.
-pub(super) fn probably(probably: Probably) -> &'static str {
+pub(in crate::report) fn probably(probably: Probably) -> &'static str {
     match probably {
         Probably::DoubleRoot => "double root",
         Probably::Continuum => "continuum",
@@ -66,7 +66,7 @@ pub(super) fn probably(probably: Probably) -> &'static str {
 }
 
 /// The same within a sentence.
-pub(super) fn probably_in_words(probably: Probably) -> &'static str {
+pub(in crate::report) fn probably_in_words(probably: Probably) -> &'static str {
     match probably {
         Probably::DoubleRoot => "probably a double root",
         Probably::Continuum => "probably a line or surface of equilibria",
@@ -77,7 +77,7 @@ pub(super) fn probably_in_words(probably: Probably) -> &'static str {
 }
 
 /// What is known of what is undecided: a sentence, and points of a continuum.
-pub(super) fn known(open: &Unresolved, species: &[Species]) -> String {
+pub(in crate::report) fn known(open: &Unresolved, species: &[Species]) -> String {
     let state = |state: &Vec<f64>| {
         let parts = species.iter().zip(state).map(|(species, &x)| format!("{} = {}", species.symbol, human(x)));
         parts.collect::<Vec<_>>().join(", ")
@@ -95,12 +95,12 @@ pub(super) fn known(open: &Unresolved, species: &[Species]) -> String {
 }
 
 /// What is claimed above the box, in the contract's words.
-pub(super) fn beyond(equilibria: &Equilibria) -> &'static str {
+pub(in crate::report) fn beyond(equilibria: &Equilibria) -> &'static str {
     if equilibria.none_above { "none" } else { "not claimed" }
 }
 
 /// Why an equilibrium has no linearisation.
-pub(super) fn why(derivative: Derivative) -> Option<&'static str> {
+pub(in crate::report) fn why(derivative: Derivative) -> Option<&'static str> {
     match derivative {
         Derivative::Exists => None,
         Derivative::Kink => Some("rates have a kink here"),
@@ -109,7 +109,7 @@ pub(super) fn why(derivative: Derivative) -> Option<&'static str> {
 }
 
 /// Why an equilibrium has no linearisation that was looked for.
-pub(super) fn unavailable(reason: Unavailable) -> &'static str {
+pub(in crate::report) fn unavailable(reason: Unavailable) -> &'static str {
     match reason {
         Unavailable::NoDerivative(derivative) => why(derivative).unwrap_or("rates have no derivative here"),
         Unavailable::Eigenvalues(Unsolved::NotFinite) => "derivatives are not finite here",
@@ -118,12 +118,12 @@ pub(super) fn unavailable(reason: Unavailable) -> &'static str {
 }
 
 /// Whether something is proved, or only computed.
-pub(super) fn proof(proven: bool) -> &'static str {
+pub(in crate::report) fn proof(proven: bool) -> &'static str {
     if proven { "proved" } else { "numerical" }
 }
 
 /// The contract's word for what the nonlinear terms say.
-pub(super) fn verdict_word(verdict: Verdict) -> &'static str {
+pub(in crate::report) fn verdict_word(verdict: Verdict) -> &'static str {
     match verdict {
         Verdict::Attracts => "attracts",
         Verdict::Repels => "repels",
@@ -133,7 +133,7 @@ pub(super) fn verdict_word(verdict: Verdict) -> &'static str {
 }
 
 /// The contract's word for the coefficient that decides.
-pub(super) fn test(test: Test) -> &'static str {
+pub(in crate::report) fn test(test: Test) -> &'static str {
     match test {
         Test::Fold => "fold",
         Test::Transcritical => "transcritical",
@@ -145,7 +145,7 @@ pub(super) fn test(test: Test) -> &'static str {
 }
 
 /// What the search of a scenario came to, and whether that is a proof.
-pub(super) fn verdict(equilibria: &Equilibria) -> (bool, String) {
+pub(in crate::report) fn verdict(equilibria: &Equilibria) -> (bool, String) {
     let count = equilibria.list.len();
     let listed = match count {
         0 => "No equilibrium is in the search box".to_owned(),

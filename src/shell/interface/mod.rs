@@ -1,31 +1,38 @@
 //! The interface on a terminal: keys in, frames out, work on threads beside it.
 //!
-//! [`run`] is the way in. `input` turns what the terminal sends into messages, `signals` what the system sends, `labour` does
-//! tasks on threads, `effects` does what `update` asks for, `painter` writes what has changed, `screen` takes the terminal
-//! and gives it back, `abilities` says what it can show. The loop sleeps until something comes: nothing here has a tick.
+//! [`run`] is the way in. `input` listens to the terminal and `decode` knows what its bytes mean, `signals` listens to the
+//! system, `labour` does tasks on threads, `effects` does what `update` asks for, `painter` writes what has changed, `screen`
+//! takes the terminal and gives it back, `ending` ends the process where the loop cannot, `abilities` says what the terminal
+//! can show. The loop sleeps until something comes: nothing here has a tick.
 
 mod abilities;
+mod decode;
 mod effects;
+mod ending;
 mod input;
 mod labour;
 mod painter;
 mod screen;
 mod signals;
+#[cfg(test)]
+mod tests;
 
 use std::io;
 use std::sync::mpsc::{Receiver, RecvTimeoutError, Sender, TryRecvError, channel};
 use std::time::{Duration, Instant};
 
-use anyhow::Result;
+use anyhow::{Context, Result};
 
-use crate::app::{App, Msg, Size, Source, update};
+use crate::app::{App, Effect, Msg, Size, Source, update};
+use crate::shell::memory::Memory;
 use crate::shell::workers::Threads;
-use crate::ui::view;
+use crate::ui::{text, view};
 use effects::Outside;
 use labour::Labour;
 use painter::Painter;
 use ratatui::buffer::Buffer;
 use ratatui::layout::Rect;
+use screen::Output;
 
 pub use abilities::{Abilities, Wish};
 
@@ -59,6 +66,9 @@ pub enum End {
     Lost,
 }
 
+/// The signal that says that a terminal is gone.
+const HANGUP: i32 = signal_hook::consts::SIGHUP;
+
 /// What wakes the loop.
 enum Event {
     /// Something for the state.
@@ -67,8 +77,10 @@ enum Event {
     Signal(i32),
     /// The system asks for a pause.
     Pause,
-    /// Nothing can be read from the terminal any more.
-    Lost,
+    /// The process goes on after it was stopped.
+    Resume,
+    /// The terminal is gone.
+    Gone,
 }
 
 /// Runs until the user leaves or the system asks for an end; the terminal is given back in either case.
@@ -77,9 +89,10 @@ enum Event {
 /// If there is no terminal to be taken.
 pub fn run(start: Start) -> Result<End> {
     let (sender, events) = channel();
+    // Before the terminal is taken, so that no signal leaves it taken.
+    signals::listen(sender.clone()).context("the system's signals cannot be heard")?;
     let screen = screen::take(start.abilities)?;
-    signals::listen(sender.clone())?;
-    input::listen(sender.clone());
+    input::listen(sender.clone()).context("the terminal cannot be read")?;
     let mut app = App::new(screen::size(), start.abilities.style, start.abilities.depth);
     app.budget = start.budget;
     app.set = start.set;
@@ -89,8 +102,13 @@ pub fn run(start: Start) -> Result<End> {
         app.reading = Some((source, app.edition));
     }
     let labour = Labour::start(start.threads, sender.clone());
-    let mut terminal = Interface { app, painter: Painter::default(), outside: Outside::new(labour, sender) };
-    let end = terminal.go(&events);
+    let mut interface = Interface {
+        app,
+        painter: Painter::new(start.abilities.style, start.abilities.depth),
+        outside: Outside::new(labour, sender, Memory::open()),
+        output: screen::output()?,
+    };
+    let end = interface.go(&events);
     drop(screen);
     Ok(end)
 }
@@ -99,6 +117,7 @@ struct Interface {
     app: App,
     painter: Painter,
     outside: Outside,
+    output: Output,
 }
 
 impl Interface {
@@ -110,7 +129,7 @@ impl Interface {
             if let Some(end) = end {
                 return end;
             }
-            if self.draw().is_err() {
+            if screen::is_taken() && self.draw().is_err() {
                 return End::Lost;
             }
             end = match events.recv() {
@@ -147,8 +166,9 @@ impl Interface {
         match event {
             Event::Msg(msg) => self.tell(msg),
             Event::Signal(number) => Some(End::Signal(number)),
-            Event::Pause => self.pause(),
-            Event::Lost => Some(End::Lost),
+            Event::Pause => screen::pause().err().map(|_| End::Lost),
+            Event::Resume => self.resume(),
+            Event::Gone => Some(End::Lost),
         }
     }
 
@@ -156,27 +176,27 @@ impl Interface {
         if let Msg::Answered(id, _) = &msg {
             self.outside.answered(*id);
         }
+        let mut end = None;
         for effect in update(&mut self.app, msg) {
             match effect {
-                crate::app::Effect::Leave => return Some(End::Left),
-                crate::app::Effect::Redraw => self.painter.forget(),
-                crate::app::Effect::Suspend => {
-                    if let Some(end) = self.pause() {
-                        return Some(end);
-                    }
+                Effect::Leave => end = Some(End::Left),
+                Effect::Redraw => self.painter.forget(),
+                Effect::Suspend => screen::ask_for_pause(),
+                Effect::WriteScreen { path, replace } => {
+                    let text = text(&self.app);
+                    ending::whole(|| self.outside.perform(Effect::Write { path, text, replace }));
                 }
-                effect => self.outside.perform(effect),
+                effect => ending::whole(|| self.outside.perform(effect)),
             }
         }
-        None
+        end
     }
 
-    /// Gives the terminal back and sleeps until the process goes on.
-    fn pause(&mut self) -> Option<End> {
-        if screen::pause().is_err() {
+    /// The process was stopped, by us or by someone else: the terminal may have been used, or have another size.
+    fn resume(&mut self) -> Option<End> {
+        if screen::take_again().is_err() {
             return Some(End::Lost);
         }
-        self.painter.forget();
         self.app.size = screen::size();
         self.tell(Msg::Resumed)
     }
@@ -185,7 +205,7 @@ impl Interface {
         let Size { columns, rows } = self.app.size;
         let mut buffer = Buffer::empty(Rect::new(0, 0, columns, rows));
         view(&self.app, &mut buffer);
-        self.painter.paint(buffer, &mut io::stdout().lock())
+        self.painter.paint(buffer, &mut self.output)
     }
 }
 

@@ -1,135 +1,222 @@
-//! Writes what has changed since the last frame, in as few bytes as a slow line deserves.
+//! Writes what has changed since the last frame, in as few bytes as a slow line deserves. One frame is one write.
 //!
-//! Changed cells are written in runs: a few cells between two of them that did not change are written again where that is
-//! shorter than moving the cursor; an attribute is written where it begins; what is blank to the end of a line is erased. One
-//! frame is one write.
+//! [`Painter::paint`] compares cell by cell and writes what differs: an attribute where it begins, a blank in whatever is set,
+//! as it looks the same in all of them; what is blank to the end of a line is erased. Between two places the cursor takes the
+//! shortest way, which may be to write again what stands there (`ways`). Only sequences of the VT100 are used, and of
+//! ECMA-48 (1991) the colours.
+//!
+//! It is also the last guard: of whatever a frame holds, no control character, no colour where there is none and nothing
+//! but ASCII where there is only that gets through.
 
+mod ways;
+
+#[cfg(test)]
+mod tests;
+
+use std::fmt::Write as _;
 use std::io::{self, Write};
 
 use ratatui::buffer::{Buffer, Cell};
 use ratatui::style::{Color, Modifier};
 use unicode_width::UnicodeWidthStr;
 
-/// Cells that are written again rather than jumped over: a jump takes four bytes.
-const BRIDGE: u16 = 3;
-/// Blanks at the end of a line that are worth erasing: that takes three bytes.
-const ERASED: u16 = 4;
+use crate::app::Depth;
+use crate::report::sketch::Style;
 
 /// What a cell looks like, apart from its character.
 type Look = (Color, Modifier);
 
 const PLAIN: Look = (Color::Reset, Modifier::empty());
+/// The attributes that are used, with their parameters.
+const ATTRIBUTES: [(Modifier, u8); 3] = [(Modifier::BOLD, 1), (Modifier::DIM, 2), (Modifier::REVERSED, 7)];
+const SHOWN: Modifier = Modifier::BOLD.union(Modifier::DIM).union(Modifier::REVERSED);
+
+const ERASE_LINE: &[u8] = b"\x1b[K";
+const ERASE_ALL: &[u8] = b"\x1b[m\x1b[H\x1b[2J";
 
 /// Remembers what is on the terminal.
-#[derive(Default)]
 pub(super) struct Painter {
+    style: Style,
+    depth: Depth,
     shown: Option<Buffer>,
     out: Vec<u8>,
-    look: Option<Look>,
-    /// Where the cursor is, if that is known.
-    at: Option<(u16, u16)>,
+    look: Look,
+    cursor: Cursor,
+}
+
+/// Where the terminal's cursor is.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+enum Cursor {
+    /// Terminals differ in that after the last column; and others may have written.
+    Unknown,
+    /// Before this cell.
+    At(u16, u16),
+    /// Before this cell, unless the terminal holds what was written for wider or narrower than we do.
+    Likely(u16, u16),
 }
 
 impl Painter {
+    pub(super) fn new(style: Style, depth: Depth) -> Self {
+        Self { style, depth, shown: None, out: Vec::new(), look: PLAIN, cursor: Cursor::Unknown }
+    }
+
     /// What is on the terminal is unknown: the next frame is written in full.
     pub(super) fn forget(&mut self) {
         self.shown = None;
     }
 
     /// Writes a frame.
-    pub(super) fn paint(&mut self, frame: Buffer, to: &mut dyn Write) -> io::Result<()> {
+    pub(super) fn paint(&mut self, mut frame: Buffer, to: &mut dyn Write) -> io::Result<()> {
         self.out.clear();
-        self.at = None;
+        self.look = PLAIN;
+        self.cursor = Cursor::Unknown;
+        let columns = usize::from(frame.area.width).max(1);
+        self.tame(&mut frame, columns);
         let before = match self.shown.take().filter(|before| before.area == frame.area) {
             Some(before) => before,
             None => {
-                self.look = None;
-                self.attribute(PLAIN);
-                self.out.extend_from_slice(b"\x1b[2J");
+                self.out.extend_from_slice(ERASE_ALL);
+                self.cursor = Cursor::At(0, 0);
                 Buffer::empty(frame.area)
             }
         };
-        let mut changes = before.diff(&frame).into_iter().map(|(x, y, _)| (x, y)).peekable();
-        while let Some((x, y)) = changes.next() {
-            if self.is_blank_from(&frame, x, y) {
-                self.go_to(&frame, x, y);
-                self.attribute(PLAIN);
-                self.out.extend_from_slice(b"\x1b[K");
-                while changes.next_if(|&(_, row)| row == y).is_some() {}
+        let lines = before.content.chunks(columns).zip(frame.content.chunks(columns));
+        for (y, (old, new)) in (0..).zip(lines) {
+            if old != new {
+                self.line(old, new, y);
+            }
+        }
+        self.wear(PLAIN);
+        self.shown = Some(frame);
+        if self.out.is_empty() {
+            return Ok(());
+        }
+        to.write_all(&self.out)?;
+        to.flush()
+    }
+
+    fn line(&mut self, old: &[Cell], new: &[Cell], y: u16) {
+        let differs = |x: &usize| old[*x] != new[*x];
+        let content = new.iter().rposition(|cell| !is_blank(cell)).map_or(0, |last| last + 1);
+        let last = (0..new.len()).rfind(differs).unwrap_or(0);
+        for x in (0..new.len()).filter(differs) {
+            if is_hidden(&new[x]) {
                 continue;
             }
-            self.go_to(&frame, x, y);
-            self.put(&frame[(x, y)], x, y, &frame);
-        }
-        if !self.out.is_empty() {
-            self.attribute(PLAIN);
-            to.write_all(&self.out)?;
-            to.flush()?;
-        }
-        self.shown = Some(frame);
-        Ok(())
-    }
-
-    fn is_blank_from(&self, frame: &Buffer, x: u16, y: u16) -> bool {
-        frame.area.width - x >= ERASED && (x..frame.area.width).all(|column| is_blank(&frame[(column, y)]))
-    }
-
-    /// Moves to a cell: over unchanged cells by writing them, where there are few of them and all look as the last one.
-    fn go_to(&mut self, frame: &Buffer, x: u16, y: u16) {
-        match self.at {
-            Some((column, row)) if (column, row) == (x, y) => return,
-            Some((column, row)) if row == y && column < x => {
-                let between = || (column..x).map(|column| &frame[(column, y)]);
-                let is_alike = |cell: &Cell| Some(look(cell)) == self.look && cell.symbol().width() == 1;
-                if x - column <= BRIDGE && between().all(is_alike) {
-                    between().for_each(|cell| self.out.extend_from_slice(cell.symbol().as_bytes()));
-                } else {
-                    self.sequence(format_args!("\x1b[{}C", x - column));
+            self.go_to(new, x, y);
+            if x >= content && last - x >= ERASE_LINE.len() {
+                if self.look.1.contains(Modifier::REVERSED) {
+                    self.wear(PLAIN);
                 }
+                self.out.extend_from_slice(ERASE_LINE);
+                return;
             }
-            _ => self.sequence(format_args!("\x1b[{};{}H", y + 1, x + 1)),
+            self.put(new, x, y);
         }
-        self.at = Some((x, y));
     }
 
-    fn put(&mut self, cell: &Cell, x: u16, y: u16, frame: &Buffer) {
-        self.attribute(look(cell));
+    fn put(&mut self, line: &[Cell], x: usize, y: u16) {
+        let cell = &line[x];
+        if !self.shows(cell) {
+            self.wear(look(cell));
+        }
         self.out.extend_from_slice(cell.symbol().as_bytes());
-        let next = x + u16::try_from(cell.symbol().width()).unwrap_or(1).max(1);
-        // Terminals differ in where the cursor is after the last column.
-        self.at = (next < frame.area.width).then_some((next, y));
+        let next = (x + cell.symbol().width().max(1)) as u16;
+        let is_certain = self.cursor == Cursor::At(x as u16, y) && is_simple(cell);
+        self.cursor = match is_certain {
+            _ if usize::from(next) >= line.len() => Cursor::Unknown,
+            true => Cursor::At(next, y),
+            false => Cursor::Likely(next, y),
+        };
     }
 
-    fn attribute(&mut self, wanted: Look) {
-        if self.look == Some(wanted) {
+    /// Whether a cell looks as it should when it is written now.
+    fn shows(&self, cell: &Cell) -> bool {
+        if is_blank(cell) { !self.look.1.contains(Modifier::REVERSED) } else { look(cell) == self.look }
+    }
+
+    fn wear(&mut self, wanted: Look) {
+        let (colour, modifier) = wanted;
+        let now = std::mem::replace(&mut self.look, wanted);
+        if wanted == now {
             return;
         }
-        self.look = Some(wanted);
         if wanted == PLAIN {
             self.out.extend_from_slice(b"\x1b[m");
             return;
         }
-        let (colour, modifier) = wanted;
-        let mut codes = String::from("0");
-        let marks = [(Modifier::BOLD, ";1"), (Modifier::DIM, ";2"), (Modifier::REVERSED, ";7")];
-        marks.iter().filter(|(mark, _)| modifier.contains(*mark)).for_each(|(_, code)| codes.push_str(code));
-        codes.push_str(&foreground(colour));
-        self.sequence(format_args!("\x1b[{codes}m"));
+        // Attributes can be taken away on every terminal only all at once.
+        let is_more = modifier.contains(now.1) && (colour != Color::Reset || now.0 == Color::Reset);
+        let mut codes = String::new();
+        if !is_more {
+            codes.push_str(";0");
+        }
+        for (mark, code) in ATTRIBUTES {
+            if modifier.contains(mark) && !(is_more && now.1.contains(mark)) {
+                // A string takes everything.
+                let _ = write!(codes, ";{code}");
+            }
+        }
+        if !(is_more && now.0 == colour) {
+            codes.push_str(&foreground(colour));
+        }
+        self.out.extend_from_slice(b"\x1b[");
+        self.out.extend_from_slice(codes.trim_start_matches(';').as_bytes());
+        self.out.push(b'm');
     }
 
-    fn sequence(&mut self, text: std::fmt::Arguments<'_>) {
-        // A vector takes everything.
-        let _ = self.out.write_fmt(text);
+    /// Makes of a frame what may be written; a cell that a wide character covers becomes empty.
+    fn tame(&self, frame: &mut Buffer, columns: usize) {
+        for line in frame.content.chunks_mut(columns) {
+            let mut covered = 0;
+            for x in 0..line.len() {
+                if covered > 0 {
+                    covered -= 1;
+                    line[x] = Cell::new("");
+                    continue;
+                }
+                self.tame_cell(&mut line[x], columns - x);
+                covered = line[x].symbol().width().max(1) - 1;
+            }
+        }
+    }
+
+    fn tame_cell(&self, cell: &mut Cell, room: usize) {
+        let symbol = cell.symbol();
+        if symbol.is_empty() || symbol.width() > room {
+            cell.set_symbol(" ");
+        } else if symbol.width() == 0
+            || symbol.contains(char::is_control)
+            || self.style == Style::Ascii && !symbol.is_ascii()
+        {
+            cell.set_symbol("?");
+        }
+        let colour = if self.depth == Depth::None { Color::Reset } else { cell.fg };
+        let look = if is_blank(cell) { PLAIN } else { (colour, cell.modifier.intersection(SHOWN)) };
+        let symbol = cell.symbol().to_owned();
+        *cell = Cell::default();
+        cell.set_symbol(&symbol);
+        (cell.fg, cell.modifier) = look;
     }
 }
 
+/// A blank that is not reversed looks the same in all colours.
 fn is_blank(cell: &Cell) -> bool {
     cell.symbol() == " " && !cell.modifier.contains(Modifier::REVERSED)
 }
 
-/// A blank looks the same in any ink that is not reversed, so it takes none.
+/// Whether a wide character covers it.
+fn is_hidden(cell: &Cell) -> bool {
+    cell.symbol().is_empty()
+}
+
+/// One character in one column, of which terminals hardly disagree.
+fn is_simple(cell: &Cell) -> bool {
+    cell.symbol().chars().count() == 1 && cell.symbol().width() == 1
+}
+
 fn look(cell: &Cell) -> Look {
-    if is_blank(cell) { PLAIN } else { (cell.fg, cell.modifier) }
+    (cell.fg, cell.modifier)
 }
 
 /// The colour's parameters (ECMA-48, and ITU-T T.416 as terminals write it).

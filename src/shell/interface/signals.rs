@@ -1,36 +1,36 @@
-//! What the system asks for: an end, or a pause.
-//!
-//! The loop may be in the middle of writing to a terminal that is gone, so the end does not hang on it: after a short while
-//! the terminal is given back and the process ended from here.
+//! What the system asks for: an end, a pause, going on, another size.
 
-use std::process;
+use std::io;
 use std::thread;
-use std::time::Duration;
 
-use anyhow::Result;
-use signal_hook::consts::{SIGHUP, SIGINT, SIGTERM, SIGTSTP};
+use signal_hook::consts::{SIGCONT, SIGHUP, SIGINT, SIGQUIT, SIGTERM, SIGTSTP, SIGWINCH};
 use signal_hook::iterator::Signals;
 
-use super::screen::give_back;
+use super::ending::end;
+use super::screen::size;
 use super::{Event, Events};
-
-/// How long the loop has to end by itself: to keep what was tried.
-const GRACE: Duration = Duration::from_millis(250);
+use crate::app::Msg;
 
 /// Listens from now on.
-pub(super) fn listen(events: Events) -> Result<()> {
-    let mut signals = Signals::new([SIGHUP, SIGINT, SIGTERM, SIGTSTP])?;
-    thread::Builder::new().name("signals".to_owned()).spawn(move || {
+///
+/// # Errors
+/// If the system does not let us.
+pub(super) fn listen(events: Events) -> io::Result<()> {
+    let mut signals = Signals::new([SIGCONT, SIGHUP, SIGINT, SIGQUIT, SIGTERM, SIGTSTP, SIGWINCH])?;
+    let listening = move || {
         for signal in signals.forever() {
-            if signal == SIGTSTP {
-                let _ = events.send(Event::Pause);
-                continue;
+            let event = match signal {
+                SIGWINCH => Event::Msg(Msg::Resized(size())),
+                SIGTSTP => Event::Pause,
+                SIGCONT => Event::Resume,
+                _ => Event::Signal(signal),
+            };
+            let is_end = matches!(event, Event::Signal(_));
+            let _ = events.send(event);
+            if is_end {
+                end(128 + signal);
             }
-            let _ = events.send(Event::Signal(signal));
-            thread::sleep(GRACE);
-            give_back();
-            process::exit(128 + signal);
         }
-    })?;
-    Ok(())
+    };
+    thread::Builder::new().name("signals".to_owned()).spawn(listening).map(|_| ())
 }

@@ -9,6 +9,7 @@ use super::identity::counted;
 use super::path::Path;
 use super::response::taken;
 use super::{Glyphs, Unit};
+use crate::analysis::measures::HarvestYield;
 use crate::model::SpeciesId;
 
 /// Yields that are shown one by one without being asked for.
@@ -56,8 +57,26 @@ fn who_can_come_in(row: &Row<'_>) -> Cell {
     }
 }
 
+/// What a harvest takes in all of the species whose yield is in a unit; none where one of them has no value: a sum without
+/// the parts that have none would pass for the whole.
+pub(in crate::report) fn total(
+    table: &Table<'_>,
+    scenario: usize,
+    yields: &[HarvestYield],
+    name: &str,
+    unit: &str,
+) -> Option<f64> {
+    let is_alike = |species: SpeciesId| Unit::Yield.of(table, Some(species.0)) == unit;
+    let amounts = yields.iter().filter(|one| one.name == name).flat_map(|one| &one.amounts);
+    let alike: Vec<f64> = amounts.filter(|(id, _)| is_alike(*id)).map(|(_, amount)| *amount).collect();
+    let harvests = table.model.harvests_under(scenario);
+    let all = harvests.iter().filter(|harvest| harvest.name == name).flat_map(|harvest| &harvest.amounts);
+    let all = all.filter(|amount| is_alike(amount.species)).count();
+    (all > 0 && alike.len() == all).then(|| alike.iter().sum())
+}
+
 /// The harvest and the unit that a sum of yields is of.
-fn sums(table: &Table<'_>) -> Vec<(String, String)> {
+pub(in crate::report) fn sums(table: &Table<'_>) -> Vec<(String, String)> {
     let mut all: Vec<(String, String)> = Vec::new();
     for harvest in table.harvests() {
         for amount in &harvest.amounts {
@@ -100,15 +119,8 @@ pub(super) fn yields(row: &Row<'_>, _: Glyphs) -> Vec<Cell> {
     let paths = taken(table, &Path::default());
     if is_summed(table, &paths) {
         let sum = |(name, unit): &(String, String)| {
-            let is_alike = |species: SpeciesId| Unit::Yield.of(table, Some(species.0)) == *unit;
-            let amounts = yields.iter().filter(|one| one.name == *name).flat_map(|one| &one.amounts);
-            let alike: Vec<f64> = amounts.filter(|(id, _)| is_alike(*id)).map(|(_, amount)| *amount).collect();
-            let harvests = table.model.harvests_under(row.scenario);
-            let all = harvests.iter().filter(|harvest| harvest.name == *name).flat_map(|harvest| &harvest.amounts);
-            let all = all.filter(|amount| is_alike(amount.species)).count();
-            // A sum without the parts that have no value would pass for the whole.
-            let is_whole = all > 0 && alike.len() == all;
-            Cell::new(if is_whole { human(alike.iter().sum()) } else { String::new() })
+            let total = total(table, row.scenario, yields, name, unit);
+            Cell::new(total.map_or_else(String::new, human))
         };
         return sums(table).iter().map(sum).collect();
     }

@@ -90,7 +90,7 @@ pub(super) fn counted(present: &[&str], all: usize) -> String {
 }
 
 /// What is proved of a state, with the error: apart, either would need the other to be understood.
-fn sureness(row: &Row<'_>) -> Cell {
+pub(in crate::report) fn sureness(row: &Row<'_>) -> Cell {
     let word = words::proof(row.equilibrium.proven);
     let text = match worst(&row.equilibrium.radius(), row.equilibrium.proven).as_str() {
         _ if !row.equilibrium.proven => word.to_owned(),

@@ -130,7 +130,8 @@ fn complex(re: f64, im: f64) -> String {
     }
 }
 
-fn kind(row: &Row<'_>, glyphs: Glyphs) -> Cell {
+/// The type for people, with its glyph and what is proved of it.
+pub(in crate::report) fn kind(row: &Row<'_>, glyphs: Glyphs) -> Cell {
     let Some(linear) = row.linear() else {
         return Cell::inked(row.why().map_or_else(String::new, |why| format!("none: {why}")), Ink::Undecided);
     };

@@ -17,6 +17,9 @@ use serde_json::Value;
 use super::layout::{Align, Cell, Head};
 use super::{Row, Table};
 pub(super) use compact::has_sums;
+pub(in crate::report) use compact::{sums, total};
+pub(in crate::report) use identity::sureness;
+pub(in crate::report) use linear::kind;
 use path::{Get, humane};
 pub(super) use path::{Path, by_symbol};
 
@@ -100,7 +103,7 @@ pub(super) enum Cells {
 
 /// Which glyphs stand before the type.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
-pub(super) enum Glyphs {
+pub(in crate::report) enum Glyphs {
     Unicode,
     Ascii,
     /// None: the font may have none.
@@ -121,7 +124,7 @@ impl Unit {
     }
 
     /// The unit in a model, for what belongs to a species where one is given; empty where there is none to be said.
-    pub(super) fn of(self, table: &Table<'_>, species: Option<usize>) -> String {
+    pub(in crate::report) fn of(self, table: &Table<'_>, species: Option<usize>) -> String {
         let time = &table.model.time_unit.value;
         let species = species.and_then(|place| table.model.species.get(place)?.unit.as_ref());
         match (self, species) {

@@ -1,0 +1,45 @@
+//! Ends the process when the loop cannot: it may be writing to a terminal that takes nothing any more, or be stuck.
+
+use std::process;
+use std::sync::atomic::{AtomicBool, Ordering};
+use std::sync::mpsc::channel;
+use std::thread;
+use std::time::{Duration, Instant};
+
+use super::screen::give_back;
+
+/// How long the loop has to end by itself.
+const GRACE: Duration = Duration::from_millis(250);
+/// How long a file that is being written is waited for.
+const FILE: Duration = Duration::from_secs(3);
+/// How often it is looked whether the file is written.
+const LOOK: Duration = Duration::from_millis(10);
+
+static IS_WRITING: AtomicBool = AtomicBool::new(false);
+
+/// Does something that is to be done whole, such as writing a file: the process does not end by itself meanwhile.
+pub(super) fn whole<T>(work: impl FnOnce() -> T) -> T {
+    IS_WRITING.store(true, Ordering::SeqCst);
+    let done = work();
+    IS_WRITING.store(false, Ordering::SeqCst);
+    done
+}
+
+/// Ends the process after a while, if it has not ended until then.
+pub(super) fn end(code: i32) -> ! {
+    thread::sleep(GRACE);
+    let until = Instant::now() + FILE;
+    while IS_WRITING.load(Ordering::SeqCst) && Instant::now() < until {
+        thread::sleep(LOOK);
+    }
+    // A terminal that takes nothing would hold this thread up as well.
+    let (sender, given_back) = channel();
+    let giving = move || {
+        give_back();
+        let _ = sender.send(());
+    };
+    if thread::Builder::new().spawn(giving).is_ok() {
+        let _ = given_back.recv_timeout(GRACE);
+    }
+    process::exit(code)
+}
