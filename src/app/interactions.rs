@@ -121,14 +121,14 @@ const SAVED_COLUMNS: usize = 80;
 pub fn text(app: &App) -> Option<String> {
     let study = app.study.as_ref()?;
     let selected = study.selected()?;
-    let mut lines = selected.heading(study, app.style);
-    let page = Page { width: SAVED_COLUMNS, style: app.style, color: false };
-    lines.extend(words(&selected, app.style).iter().map(|text| page.paragraph("", text, 0)));
+    let mut lines = selected.heading(study, Style::Unicode);
+    let page = Page { width: SAVED_COLUMNS, style: Style::Unicode, color: false };
+    lines.extend(words(&selected, Style::Unicode).iter().map(|text| page.paragraph("", text, 0)));
     for effects in [Effects::Direct, Effects::Net] {
         lines.push(String::new());
         match table(study, effects)? {
             Ok(table) => {
-                lines.push(interactions::text(&table, selected.model(), app.style).trim_end().to_owned());
+                lines.push(interactions::text(&table, selected.model(), Style::Unicode).trim_end().to_owned());
                 lines.push(said(&signs(&[&table])));
             }
             Err(reason) => lines.push(reason.to_owned()),
@@ -142,7 +142,7 @@ pub fn text(app: &App) -> Option<String> {
 pub fn csv(app: &App) -> Option<String> {
     let study = app.study.as_ref()?;
     let selected = study.selected()?;
-    let of = |effects| Some(interactions::csv(&table(study, effects)?.ok()?, selected.model(), app.style));
+    let of = |effects| Some(interactions::csv(&table(study, effects)?.ok()?, selected.model(), Style::Unicode));
     let direct = of(Effects::Direct)?;
     // One heading for both.
     let net = of(Effects::Net).unwrap_or_default();

@@ -259,16 +259,16 @@ pub fn text(app: &App) -> Option<String> {
     let study = app.study.as_ref()?;
     let selected = study.selected()?;
     let course = known(app, study)?;
-    let page = Page { width: SAVED_COLUMNS, style: app.style, color: false };
-    let mut lines = selected.heading(study, app.style);
+    let page = Page { width: SAVED_COLUMNS, style: Style::Unicode, color: false };
+    let mut lines = selected.heading(study, Style::Unicode);
     let mut said = vec![format!("After a knock: {}.", blow(study)?.at_length())];
-    said.extend(words(study, course, app.style));
+    said.extend(words(study, course, Style::Unicode));
     lines.extend(said.iter().map(|text| page.paragraph("", text, 0)));
     let all = bands(course, room(app.size))[1];
     let size = sketch::Size { columns: SAVED_COLUMNS, rows: all.max(1) * SAVED_ROWS };
     lines.push(String::new());
-    lines.extend(drawing(course, selected.model(), 0, size, app.style).lines(false));
-    lines.push(super::interactions::said(&signs(course, app.style)));
+    lines.extend(drawing(course, selected.model(), 0, size, Style::Unicode).lines(false));
+    lines.push(super::interactions::said(&signs(course, Style::Unicode)));
     lines.extend([String::new(), page.paragraph("", CAUTION, 0)]);
     Some(lines.iter().fold(String::new(), |text, line| text + line.trim_end() + "\n"))
 }
@@ -276,5 +276,5 @@ pub fn text(app: &App) -> Option<String> {
 /// The path and its prediction as CSV, one row a time; `None` where they are not known.
 pub fn csv(app: &App) -> Option<String> {
     let study = app.study.as_ref()?;
-    Some(course::csv(known(app, study)?, study.selected()?.model(), app.style))
+    Some(course::csv(known(app, study)?, study.selected()?.model(), Style::Unicode))
 }

@@ -6,7 +6,7 @@ use restpoint::shell::tasks::{Means, perform};
 use restpoint::shell::workers::Threads;
 
 use crate::bench::{Bench, SIZES};
-use crate::texts::looks_as;
+use crate::texts::{looks_as, written};
 
 /// Two that have nothing to do with each other: S goes to 5, C to 3, along curves that are known.
 const TWO: &str = "\
@@ -193,30 +193,6 @@ fn many_species_scroll() {
     }
 }
 
-/// Any keys in any order, on terminals of any size: nothing panics, and what is shown has the terminal's size.
-#[test]
-fn any_keys_are_survived() {
-    let mut bench = Bench::of(TWO);
-    let mut state = 1u64;
-    let mut random = |below: usize| {
-        // A linear congruential generator; its high bits are good enough here (Knuth 1997).
-        state = state.wrapping_mul(6_364_136_223_846_793_005).wrapping_add(1_442_695_040_888_963_407);
-        usize::try_from(state >> 33).unwrap() % below
-    };
-    let keys = [
-        "a", "i", "<Tab>", ".", ",", "]", "[", "}", "{", "t", "<Up>", "<Down>", "<Right>", "<Left>", "m", "h", "<Esc>",
-    ];
-    for turn in 0..1500 {
-        if turn % 50 == 0 {
-            let most = if turn % 100 == 0 { 12 } else { 210 };
-            bench = bench.at([random(most), random(most)].map(|size| u16::try_from(size).unwrap()));
-        }
-        bench.press(keys[random(keys.len())]);
-        let (text, size) = (bench.text(), bench.app.size);
-        assert_eq!(text.lines().count(), usize::from(size.rows), "{text}");
-    }
-}
-
 /// What an update asks for.
 fn asked(bench: &mut Bench, key: char) -> (Vec<(JobId, Task)>, Vec<JobId>) {
     let effects = update(&mut bench.app, Msg::Struck(Key::Char(key)));
@@ -262,11 +238,13 @@ fn what_is_saved_has_all_of_it() {
     assert_eq!((text(&bench.app), csv(&bench.app)), (None, None));
     bench.press("a<End>");
     let saved = text(&bench.app).unwrap();
-    for part in ["two levels\n", "Scenario: first\n", "E4, stable node, proved\n", "S, kt\n", "C, kt\n", "authority"] {
+    for part in ["two levels\n", "scenario: first\n", "E4, stable node, proved\n", "S, kt\n", "C, kt\n", "authority"] {
         assert!(saved.contains(part), "no {part} in\n{saved}");
     }
     assert!(saved.contains("After a knock: half of all taken (-50 %).\n"), "{saved}");
+    assert_eq!(written(&mut bench, "knock.txt"), saved);
     let saved = csv(&bench.app).unwrap();
+    assert_eq!(written(&mut bench, "knock.csv"), saved);
     let rows: Vec<Vec<&str>> = saved.lines().map(|line| line.split(',').collect()).collect();
     assert_eq!(rows[0], ["time [yr]", "S [kt]", "C [kt]", "S predicted [kt]", "C predicted [kt]"]);
     assert_eq!(rows[1], ["0.0", "2.5", "1.5", "2.5", "1.5"]);
