@@ -5,7 +5,7 @@
 
 use super::study::Slot;
 use super::wants::naming;
-use super::{Answer, App, Screen, Source, Study, beside};
+use super::{Answer, App, Screen, Source, Study, beside, interactions, knock};
 use crate::diag::SourceId;
 use crate::model::ParameterId;
 use crate::report::compare::{self, Comparison};
@@ -15,7 +15,11 @@ use crate::report::table::{Command, Form, Limits, Names, Page, Scene, Table, wri
 /// Columns of a text that is written to a file.
 const WIDTH: usize = 80;
 
-/// The table behind the present screen.
+/// Said where what is shown is not known yet.
+const WAIT: &str = "it is still being worked out; write it when that is done";
+
+/// The table behind the present screen. Of a knock and of interactions a text and a CSV have what the screen shows, the other
+/// forms the table.
 ///
 /// # Errors
 ///
@@ -24,10 +28,18 @@ pub fn behind(app: &App, form: Form) -> Result<String, String> {
     match (app.screen, &app.study) {
         (Screen::Chooser, _) | (_, None) => Err("no model is open".to_owned()),
         (Screen::SideBySide, Some(study)) => side_by_side(app, study, form),
+        (Screen::Interactions, Some(study)) => match form {
+            Form::Text => interactions::text(app).ok_or_else(|| WAIT.to_owned()),
+            Form::Csv => interactions::csv(app).ok_or_else(|| "there is no linear part here".to_owned()),
+            _ => table(app, study, form),
+        },
+        (Screen::Knock, Some(study)) => match form {
+            Form::Text => knock::text(app).ok_or_else(|| WAIT.to_owned()),
+            Form::Csv => knock::csv(app).ok_or_else(|| WAIT.to_owned()),
+            _ => table(app, study, form),
+        },
         // What these screens say of equilibria, the table says in more columns.
-        (Screen::Equilibria | Screen::Values | Screen::Interactions | Screen::Knock, Some(study)) => {
-            table(app, study, form)
-        }
+        (Screen::Equilibria | Screen::Values, Some(study)) => table(app, study, form),
     }
 }
 
