@@ -57,7 +57,7 @@ fn used(environment: &[(&str, &str)], options: &[&str]) -> Used {
     session.wait_until_done();
     session.keys("nfm");
     session.keys("h");
-    session.wait_for_text("Keys here");
+    session.wait_for_text("Keys and signs");
     session.keys("q");
     assert_eq!(session.code(), 0);
     session.wait_for("the cursor", |screen| !screen.hide_cursor());

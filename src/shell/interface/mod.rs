@@ -100,7 +100,7 @@ pub fn run(start: Start) -> Result<End> {
         app.edition += 1;
         app.reading = Some((source, app.edition));
     }
-    let labour = Labour::start(start.threads, sender.clone());
+    let labour = Labour::start(start.threads, &sender);
     let mut interface = Interface {
         app,
         painter: Painter::new(start.abilities.style, start.abilities.depth),
@@ -109,6 +109,8 @@ pub fn run(start: Start) -> Result<End> {
     };
     let end = interface.go(&events);
     drop(screen);
+    // What is still to be written is written; the user sees the shell meanwhile.
+    ending::whole(|| drop(interface));
     Ok(end)
 }
 

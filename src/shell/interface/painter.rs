@@ -72,14 +72,8 @@ impl Painter {
         self.cursor = Cursor::Unknown;
         let columns = usize::from(frame.area.width).max(1);
         self.tame(&mut frame, columns);
-        let before = match self.shown.take().filter(|before| before.area == frame.area) {
-            Some(before) => before,
-            None => {
-                self.out.extend_from_slice(ERASE_ALL);
-                self.cursor = Cursor::At(0, 0);
-                Buffer::empty(frame.area)
-            }
-        };
+        let known = self.shown.take().filter(|before| before.area == frame.area);
+        let before = known.unwrap_or_else(|| self.erase_all(&frame));
         let lines = before.content.chunks(columns).zip(frame.content.chunks(columns));
         for (y, (old, new)) in (0..).zip(lines) {
             if old != new {
@@ -93,6 +87,13 @@ impl Painter {
         }
         to.write_all(&self.out)?;
         to.flush()
+    }
+
+    /// Takes everything away; what is shown then.
+    fn erase_all(&mut self, frame: &Buffer) -> Buffer {
+        self.out.extend_from_slice(ERASE_ALL);
+        self.cursor = Cursor::At(0, 0);
+        Buffer::empty(frame.area)
     }
 
     fn line(&mut self, old: &[Cell], new: &[Cell], y: u16) {
