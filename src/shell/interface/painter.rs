@@ -170,14 +170,14 @@ impl Painter {
     fn tame(&self, frame: &mut Buffer, columns: usize) {
         for line in frame.content.chunks_mut(columns) {
             let mut covered = 0;
-            for x in 0..line.len() {
+            for (x, cell) in line.iter_mut().enumerate() {
                 if covered > 0 {
                     covered -= 1;
-                    line[x] = Cell::new("");
+                    *cell = Cell::new("");
                     continue;
                 }
-                self.tame_cell(&mut line[x], columns - x);
-                covered = line[x].symbol().width().max(1) - 1;
+                self.tame_cell(cell, columns - x);
+                covered = cell.symbol().width().max(1) - 1;
             }
         }
     }

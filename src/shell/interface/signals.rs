@@ -32,7 +32,9 @@ pub(super) fn listen(events: Events) -> io::Result<()> {
             // rarely is less of a nuisance than one that stops for ever.
             let mut came: Vec<i32> = signals.wait().collect();
             came.sort_by_key(|&signal| signal == SIGCONT);
-            came.into_iter().for_each(|signal| tell(signal, &events));
+            for signal in came {
+                tell(signal, &events);
+            }
         }
     };
     thread::Builder::new().name("signals".to_owned()).spawn(listening).map(|_| ())
