@@ -102,8 +102,18 @@ pub enum Action {
     Forget,
     /// The tried values as a new scenario, in a copy of the model file.
     Record,
+    /// Opens the copy that was recorded last.
+    OpenCopy,
+    /// Takes up the values that were tried when the program ran last.
+    TakeUp,
+    /// Completes the path that is typed; where something is written, changes what.
+    Complete,
     /// Another kind of the same screen: what the interactions show, what the knock hits.
     Other,
-    /// A stronger or weaker knock.
+    /// A knock that leaves more, or less.
     Knock(Step),
+    /// Absent species among the interactions, or only those that are there.
+    Absent,
+    /// To another part of what is shown.
+    Scroll(Direction),
 }

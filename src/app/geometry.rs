@@ -139,6 +139,21 @@ pub fn values(size: Size, count: usize) -> Values {
     Values { sentence, list, details, sketch, found }
 }
 
+/// The parts of the chooser.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub struct Models {
+    /// The models, below a heading.
+    pub list: Area,
+    /// All about the selected one.
+    pub details: Area,
+}
+
+/// The parts of the chooser.
+pub fn chooser(size: Size) -> Models {
+    let (details, list) = frame(size).body.bottom(5);
+    Models { list, details }
+}
+
 /// How many entries a list shows below its heading.
 pub fn listed(list: Area) -> usize {
     usize::from(list.rows.saturating_sub(2).max(1))

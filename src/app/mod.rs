@@ -7,11 +7,15 @@
 //! its drawing in `ui`.
 
 pub mod action;
+pub mod behind;
+pub mod beside;
 pub mod catalogue;
 pub mod desk;
 pub mod geometry;
+pub mod interactions;
 pub mod key;
 pub mod keymap;
+pub mod knock;
 pub mod memory;
 pub mod sketch;
 pub mod study;
@@ -25,6 +29,7 @@ use std::sync::Arc;
 
 use crate::diag::{Diagnostic, Sources};
 use crate::model::Original;
+use crate::model::amend::Addition;
 use crate::report::sketch::Style;
 
 pub use action::Action;
@@ -97,19 +102,27 @@ pub struct Entry {
     pub cursor: usize,
     /// What is wrong with it, or what it could go on as.
     pub hint: String,
+    /// Whether the text is a suggestion: what is typed takes its place.
+    pub suggested: bool,
+    /// The text as it was when its file was found to be there already: taken once more, it replaces the file.
+    pub replaces: Option<String>,
 }
 
 /// What a typed text is for.
-#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+#[derive(Clone, Debug, PartialEq, Eq)]
 pub enum Purpose {
     /// The path of a model to open.
     Open,
     /// The value of the parameter that is selected.
     Value,
-    /// The file to write to.
+    /// The file that the table behind the screen is written to.
     Write,
+    /// The file that the screen is written to as text.
+    WriteScreen,
     /// The name of the new scenario.
     Record,
+    /// The file that the copy with a new scenario of this name is written to.
+    RecordTo(String),
 }
 
 /// What is being moved with the arrows.
@@ -143,6 +156,10 @@ pub struct App {
     pub screen: Screen,
     /// What lies over it.
     pub dialog: Option<Dialog>,
+    /// What was typed and is being written: it comes back where that fails.
+    pub sent: Option<Entry>,
+    /// A free name for a copy of the model file.
+    pub suggestion: Option<PathBuf>,
     /// Models to choose from.
     pub chooser: Chooser,
     /// The model that is open.
@@ -161,6 +178,8 @@ pub struct App {
     pub set: Vec<(String, f64)>,
     /// The only scenarios that are shown, by name; all where there are none.
     pub only: Vec<String>,
+    /// The copy that was recorded last, and its new scenario.
+    pub copy: Option<(PathBuf, String)>,
 }
 
 /// Models to choose from.
@@ -172,6 +191,10 @@ pub struct Chooser {
     pub chosen: usize,
     /// The first that is shown.
     pub from: usize,
+    /// The last number that was given to a listing; 0 before the first.
+    pub listing: u64,
+    /// Whether that listing goes on.
+    pub is_listing: bool,
 }
 
 /// Where a model comes from.
@@ -207,12 +230,44 @@ pub enum Msg {
     Answered(JobId, Answer),
     /// A search has come further: faces and boxes in all.
     Advanced(JobId, crate::analysis::equilibria::Progress),
-    /// A file was written, or was not and why.
-    Written(Result<PathBuf, String>),
+    /// A file was written, or was not.
+    Written(Written),
+    /// What a typed path could become.
+    Completed(String, catalogue::Completion),
+    /// A free name for a copy of the model file.
+    Suggested(PathBuf),
+    /// A model that can be chosen, of a listing.
+    Listed(u64, catalogue::Entry),
+    /// There are no more.
+    AllListed(u64),
+    /// What was tried on a model before and is in no file.
+    Recalled(Source, memory::Session),
+    /// Something that the user should know of the outside.
+    Remarked(String),
     /// The model file, or a table that it names, is another than it was.
     Changed,
     /// The program goes on after a pause.
     Resumed,
+}
+
+/// What came of writing a file.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub enum Written {
+    /// It is there.
+    Done(PathBuf),
+    /// The copy of a model is there.
+    Recorded {
+        /// Where.
+        path: PathBuf,
+        /// Its new scenario.
+        scenario: String,
+        /// Whether the model names tables that are not beside the copy.
+        needs_tables: bool,
+    },
+    /// There was a file of that name already; it was left as it is.
+    Taken(PathBuf),
+    /// It could not be written, and why.
+    Failed(String),
 }
 
 /// What is to be done outside.
@@ -231,8 +286,36 @@ pub enum Effect {
         /// Whether a file that is there may be replaced.
         replace: bool,
     },
+    /// Writes the present screen as text.
+    WriteScreen {
+        /// Where.
+        path: PathBuf,
+        /// Whether a file that is there may be replaced.
+        replace: bool,
+    },
+    /// Writes a copy of a model file with one more scenario.
+    Record {
+        /// Where the model comes from.
+        source: Source,
+        /// The model.
+        world: Arc<study::World>,
+        /// The scenario.
+        addition: Addition,
+        /// Where the copy goes.
+        path: PathBuf,
+        /// Whether a file that is there may be replaced.
+        replace: bool,
+    },
+    /// Completes a path.
+    Complete(String),
+    /// Finds a free name for a copy of a model file.
+    Suggest(Source),
+    /// Lists the models that can be chosen, beginning with those given; the number comes back with each.
+    List(u64, Vec<PathBuf>),
+    /// Notes that a model was opened, and brings back what was tried on it before.
+    Recall(Source, Arc<study::World>),
     /// From now on says when this model changes.
-    Watch(Source, Vec<String>),
+    Watch(Source, Arc<study::World>),
     /// Keeps what was tried and not saved; nothing to keep where there is nothing.
     Keep(Source, Option<memory::Session>),
     /// Draws all anew.
@@ -252,6 +335,9 @@ impl App {
             depth,
             screen: Screen::Chooser,
             dialog: None,
+            sent: None,
+            suggestion: None,
+            copy: None,
             chooser: Chooser::default(),
             study: None,
             reading: None,

@@ -3,10 +3,17 @@
 use std::sync::Arc;
 
 use super::Source;
+use super::beside::Beside;
+use super::interactions::Interacting;
+use super::knock::Knock;
+use super::memory::Session;
 use super::sketch::Sketch;
+use crate::analysis::assess::Assessed;
+use crate::analysis::equilibria::Equilibrium;
 use crate::analysis::prepare::Prepared;
 use crate::model::{Model, Original, ParameterId};
-use crate::report::table::{Names, Scene, Solved};
+use crate::report::sketch::Style;
+use crate::report::table::{Case, Names, Scene, Solved, clean};
 
 /// A model ready to be searched. Two of them are the same where their editions are.
 #[derive(Clone, Debug)]
@@ -80,6 +87,10 @@ pub struct Tried {
     pub redo: Vec<TriedSet>,
     /// The edition of the world that it is to be searched in.
     pub edition: u64,
+    /// The edition that is kept outside, or written to a file.
+    pub kept: u64,
+    /// The edition that was written to a file.
+    pub recorded: u64,
     /// Whether it is to be looked at as soon as it is ready.
     pub follow: bool,
 }
@@ -105,10 +116,18 @@ pub struct Study {
     pub from: usize,
     /// The first number of the selected equilibrium that is shown.
     pub facts_from: usize,
+    /// What is selected where scenarios stand side by side.
+    pub beside: Beside,
     /// What the sketch shows.
     pub sketch: Sketch,
+    /// How the interactions are looked at.
+    pub interacting: Interacting,
+    /// The knock.
+    pub knock: Knock,
     /// Values that were tried.
     pub tried: Tried,
+    /// What was tried when the program ran last and is in no file, until something is tried now.
+    pub offer: Option<Session>,
     /// The parameter that is selected where values are tried, by its place in [`Study::parameters`].
     pub parameter: usize,
     /// The first parameter that is shown.
@@ -129,8 +148,12 @@ impl Study {
             wanted: None,
             from: 0,
             facts_from: 0,
+            beside: Beside::default(),
             sketch: Sketch::default(),
+            interacting: Interacting::default(),
+            knock: Knock::default(),
             tried: Tried::default(),
+            offer: None,
             parameter: 0,
             parameters_from: 0,
         }
@@ -149,6 +172,16 @@ impl Study {
     /// What was found in it.
     pub fn solved(&self) -> Option<&Solved> {
         self.slot().and_then(Slot::solved)
+    }
+
+    /// The equilibrium that is selected, with what is known of it.
+    pub fn selected(&self) -> Option<Selected<'_>> {
+        let (world, scene) = self.slot()?.found.as_ref()?;
+        let solved = scene.outcome.as_ref().ok()?;
+        let place = self.chosen;
+        let equilibrium = solved.equilibria.list.get(place)?;
+        let assessed = solved.assessment.equilibria.get(place)?;
+        Some(Selected { world, scene, solved, place, equilibrium, assessed })
     }
 
     /// Names of the equilibria of a slot.
@@ -221,5 +254,49 @@ impl Study {
             self.chosen = place;
         }
         self.chosen = self.chosen.min(self.count().saturating_sub(1));
+    }
+}
+
+/// The equilibrium that is selected.
+#[derive(Clone, Copy, Debug)]
+pub struct Selected<'s> {
+    /// What it was found in.
+    pub world: &'s Arc<World>,
+    /// The search that found it.
+    pub scene: &'s Arc<Scene>,
+    /// What was found with it.
+    pub solved: &'s Solved,
+    /// Its place in the list.
+    pub place: usize,
+    /// What it is.
+    pub equilibrium: &'s Equilibrium,
+    /// What is said of it.
+    pub assessed: &'s Assessed,
+}
+
+impl<'s> Selected<'s> {
+    /// The model, with its scenarios.
+    pub fn model(&self) -> &'s Model {
+        &self.world.original.model
+    }
+
+    /// Its name; empty where it has none yet.
+    pub fn id(self, study: &Study) -> &str {
+        study.names(study.current).get(self.place).map_or("", String::as_str)
+    }
+
+    /// Its sign, name and type, and how sure they are.
+    pub fn label(&self, study: &Study, style: Style) -> String {
+        let bounds = &self.world.prepared.bounds;
+        let ids = study.names(study.current);
+        let case = Case { model: self.model(), bounds, scene: self.scene, solved: self.solved, ids };
+        case.label(self.place, style == Style::Ascii)
+    }
+
+    /// What a text about it begins with: model, scenario, equilibrium, each a line, harmless.
+    pub fn heading(&self, study: &Study, style: Style) -> Vec<String> {
+        let scenario = self.model().scenarios.get(self.scene.scenario).map_or("", |scenario| &scenario.name);
+        let lines = [self.model().title.value.clone(), format!("Scenario: {scenario}"), self.label(study, style)];
+        lines.iter().map(|line| clean(line, style)).collect()
     }
 }

@@ -5,7 +5,9 @@ use std::sync::Arc;
 use super::study::{TriedSet, World};
 use super::{Read, Source};
 use crate::analysis::field::{Scale, Slice, Window};
+use crate::analysis::passage::Passage;
 use crate::analysis::paths::Path;
+use crate::report::course::Course;
 use crate::report::sketch::{Picture, Plot};
 use crate::report::table::{Names, Scene, Solved};
 
@@ -34,6 +36,17 @@ pub enum Task {
         /// Seconds that it may take.
         budget: f64,
     },
+    /// Follows the equilibria of the first of several scenarios to each of the others.
+    Compare {
+        /// A model with all those scenarios.
+        world: Arc<World>,
+        /// What was found, in the order of the columns.
+        scenes: Vec<Found>,
+        /// Names of what was found, in the same order.
+        names: Vec<Vec<String>>,
+        /// Seconds that it may take.
+        budget: f64,
+    },
     /// Computes what a sketch shows.
     Paint(Painting),
     /// Follows the path from a state.
@@ -47,6 +60,23 @@ pub enum Task {
         /// For how long, in time units; backwards where negative.
         until: f64,
     },
+    /// Follows the path after a knock, and compares it with what the linear part predicts.
+    Run(Release),
+}
+
+/// A path from beside an equilibrium.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Release {
+    /// The model.
+    pub world: Arc<World>,
+    /// What was found.
+    pub scene: Found,
+    /// The place of the equilibrium in the list of those found.
+    pub equilibrium: usize,
+    /// The state of all species at the start.
+    pub start: Vec<f64>,
+    /// For how long, in time units.
+    pub until: f64,
 }
 
 /// A sketch to be computed.
@@ -83,6 +113,23 @@ impl Found {
     }
 }
 
+/// Scenarios side by side: all that a comparison is made of.
+#[derive(Clone, Debug)]
+pub struct Compared {
+    /// The model.
+    pub world: Arc<World>,
+    /// What was found, column by column.
+    pub scenes: Vec<Scene>,
+    /// Names of what was found.
+    pub names: Names,
+    /// The names that they have where only these are looked at: what the command that makes the table again gives them.
+    pub own_names: Names,
+    /// From the first column to each of the others.
+    pub passages: Vec<Option<Passage>>,
+    /// Every name, in the order of first appearance.
+    pub ids: Vec<String>,
+}
+
 /// What came of a task.
 #[derive(Clone, Debug)]
 pub enum Answer {
@@ -94,8 +141,12 @@ pub enum Answer {
     Solved(Box<Scene>),
     /// Of naming, scenario by scenario.
     Named(Arc<Names>),
+    /// Of comparing.
+    Compared(Arc<Compared>),
     /// Of painting; nothing where the scenario has no equations.
     Painted(Option<Arc<Picture>>),
     /// Of following.
     Followed(Option<Arc<Path>>),
+    /// Of following after a knock; nothing where the scenario has no equations.
+    Ran(Option<Arc<Course>>),
 }

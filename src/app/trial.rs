@@ -76,8 +76,8 @@ pub fn step(parameter: &Parameter) -> f64 {
 pub fn reach(parameter: &Parameter, value: f64) -> [f64; 2] {
     let [low, high] = match &parameter.range {
         Some(range) => range.value,
-        None if value > 0.0 => [0.0, f64::MAX],
-        None if value < 0.0 => [f64::MIN, 0.0],
+        None if parameter.value > 0.0 => [0.0, f64::MAX],
+        None if parameter.value < 0.0 => [f64::MIN, 0.0],
         None => [f64::MIN, f64::MAX],
     };
     // A value that was typed may lie outside; steps then lead back.

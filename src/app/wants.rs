@@ -5,10 +5,10 @@
 
 use std::sync::Arc;
 
-use super::geometry;
 use super::study::Slot;
 use super::task::{Found, Painting, Task};
 use super::{App, Screen, Study};
+use super::{beside, geometry};
 use crate::analysis::field::{Held, Slice, Window};
 use crate::report::sketch::{Plot, Size, fit};
 use crate::report::table::Solved;
@@ -23,11 +23,28 @@ pub fn wants(app: &App) -> Vec<Task> {
     tasks.extend(preparing(study));
     tasks.extend(searches(app, study));
     tasks.extend(naming(app, study));
-    if matches!(app.screen, Screen::Equilibria | Screen::Values) {
-        tasks.extend(painting(study, study.current, sketch_size(app, study)).map(Task::Paint));
-        tasks.extend(paths(study));
+    match app.screen {
+        Screen::Equilibria | Screen::Values => {
+            tasks.extend(painting(study, study.current, sketch_size(app, study)).map(Task::Paint));
+            tasks.extend(paths(study));
+        }
+        Screen::SideBySide => tasks.extend(side_by_side(app, study)),
+        Screen::Chooser | Screen::Interactions | Screen::Knock => {}
+    }
+    if app.screen == Screen::Knock {
+        tasks.extend(super::knock::run(study));
     }
     tasks
+}
+
+/// The sketches of the scenarios that are shown, and the comparison.
+fn side_by_side(app: &App, study: &Study) -> Vec<Task> {
+    let slots = beside::shown(study, app.size);
+    let parts = beside::parts(app.size, slots.len(), beside::ids(study, app.size).len());
+    let sketches = slots.iter().zip(&parts.columns).filter_map(|(&slot, [_, area])| {
+        painting(study, slot, Size { columns: area.columns.into(), rows: area.rows.into() }).map(Task::Paint)
+    });
+    sketches.chain(paths(study)).chain(beside::task(app, study)).collect()
 }
 
 /// The tried values, where they are others than those that are ready.
@@ -62,6 +79,12 @@ fn search(slot: &Slot, budget: f64) -> Task {
 /// Columns and rows of the sketch on the present screen.
 pub fn sketch_size(app: &App, study: &Study) -> Size {
     let area = match app.screen {
+        Screen::SideBySide => {
+            let slots = beside::shown(study, app.size);
+            let parts = beside::parts(app.size, slots.len(), beside::ids(study, app.size).len());
+            let place = slots.iter().position(|&slot| slot == study.current).unwrap_or(0);
+            parts.columns.get(place).map_or_else(Default::default, |[_, sketch]| *sketch)
+        }
         Screen::Values => geometry::values(app.size, study.count()).sketch,
         _ => geometry::equilibria(app.size, study.count()).sketch,
     };
@@ -113,17 +136,23 @@ fn paths(study: &Study) -> Vec<Task> {
 
 /// The path from the point, or to it.
 pub fn path(study: &Study, backwards: bool) -> Option<Task> {
-    let point = study.sketch.point?;
+    let start = start(study)?;
     let (world, scene) = study.slot()?.found.clone()?;
-    let solved = scene.outcome.as_ref().ok()?;
+    let horizon = horizon(scene.outcome.as_ref().ok()?);
+    Some(Task::Follow { world, scenario: scene.scenario, start, until: if backwards { -horizon } else { horizon } })
+}
+
+/// The state of all species at the point; `None` where there is none.
+pub fn start(study: &Study) -> Option<Vec<f64>> {
+    let point = study.sketch.point?;
+    let solved = study.solved()?;
     let slice = slice(study, solved, axes(study), study.chosen);
     let mut start = slice.held.clone();
     *start.get_mut(slice.x)? = point[0];
     if let Some(y) = slice.y {
         *start.get_mut(y)? = point[1];
     }
-    let horizon = horizon(solved);
-    Some(Task::Follow { world, scenario: scene.scenario, start, until: if backwards { -horizon } else { horizon } })
+    Some(start)
 }
 
 /// Return times that a path is followed for: by then what fades has faded to e⁻²⁰.

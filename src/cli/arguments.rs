@@ -5,9 +5,10 @@ use std::path::PathBuf;
 use clap::{Args, Parser, Subcommand, ValueEnum};
 
 use crate::report::sketch::{LARGEST, SMALLEST, Size};
+use crate::report::table::{Form, Limits};
 
 /// Seconds that the search of one scenario may take where `--budget` does not say.
-pub(super) const BUDGET: f64 = 10.0;
+pub(super) const BUDGET: f64 = Limits::SECONDS;
 
 /// More threads than this are a slip of the finger.
 const MOST_THREADS: i64 = 1024;
@@ -225,15 +226,14 @@ pub(super) enum Format {
     Latex,
 }
 
-impl Format {
-    /// As it is typed.
-    pub(super) fn word(self) -> &'static str {
-        match self {
-            Format::Text => "text",
-            Format::Csv => "csv",
-            Format::Markdown => "markdown",
-            Format::Json => "json",
-            Format::Latex => "latex",
+impl From<Format> for Form {
+    fn from(format: Format) -> Self {
+        match format {
+            Format::Text => Self::Text,
+            Format::Csv => Self::Csv,
+            Format::Markdown => Self::Markdown,
+            Format::Json => Self::Json,
+            Format::Latex => Self::Latex,
         }
     }
 }

@@ -10,6 +10,7 @@ use crate::model::lint::lint;
 use crate::model::system::System;
 use crate::model::units::check_units;
 use crate::report::check::{Style, Subject, json as report_json, text as report_text};
+use crate::report::table::Form;
 use crate::shell::models::{Reading, read};
 
 use super::arguments::{Format, Options};
@@ -19,7 +20,7 @@ use super::{Exit, Outcome};
 /// Reads the model at `path`, or the one compiled in, and says what was understood.
 pub(super) fn check(path: Option<&Path>, options: &Options, color: bool) -> Outcome {
     if !matches!(options.format, Format::Text | Format::Json) {
-        let word = options.format.word();
+        let word = Form::from(options.format).word();
         return Outcome::only(
             format!("error: check writes text or json, not {word}; table writes {word}\n"),
             Exit::Usage,

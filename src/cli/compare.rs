@@ -6,16 +6,16 @@ use crate::analysis::passage::Passage;
 use crate::analysis::prepare::Prepared;
 use crate::diag::cleanse::cleanse;
 use crate::model::Original;
-use crate::report::compare::{Comparison, csv, json, latex, markdown, text};
+use crate::report::compare::{Comparison, written};
 use crate::report::table::{Limits, Page, Scene, Style, Table};
 use crate::shell::models::{Reading, read};
 use crate::shell::signal::Interrupt;
 use crate::shell::solver::{BOXES, passages};
 use crate::shell::workers::Threads;
 
-use super::arguments::{BUDGET, Format, Options, Work};
+use super::arguments::{BUDGET, Options, Work};
 use super::choice::Choice;
-use super::model::{pretty, remarks, wrong};
+use super::model::{remarks, wrong};
 use super::solve::{Solver, ended};
 use super::table::command;
 use super::{Exit, Outcome, Screen};
@@ -76,13 +76,7 @@ fn present(
     let comparison = &Comparison::new(table, passages);
     let style = if options.ascii { Style::Ascii } else { Style::Unicode };
     let page = Page { width: screen.width, style, color: screen.color };
-    let result = match options.format {
-        Format::Text => text(comparison, page),
-        Format::Csv => csv(comparison, style),
-        Format::Markdown => markdown(comparison, page),
-        Format::Json => pretty(&json(comparison), options),
-        Format::Latex => latex(comparison, page),
-    };
+    let result = written(comparison, options.format.into(), page);
     let (failed, exit) = ended(table.scenes, table.interrupted, work.strict);
     Outcome { result, remarks: remarks(&failed, &original.model.sources, screen.color_remarks), exit }
 }

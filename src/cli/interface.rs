@@ -1,13 +1,18 @@
 //! `restpoint` and `restpoint MODEL` on a terminal: the interface.
 
 use std::io::{self, IsTerminal};
-use std::path::{Path, PathBuf};
+use std::path::Path;
+
+use unicode_normalization::UnicodeNormalization;
 
 use crate::app::Source;
+use crate::diag::cleanse::cleanse;
 use crate::shell::interface::{Abilities, End, Start, Wish, run};
+use crate::shell::models::{Reading, read};
 use crate::shell::workers::Threads;
 
-use super::arguments::{Arguments, BUDGET, Color, Format};
+use super::arguments::{Arguments, BUDGET, Color, Format, Work};
+use super::choice::Choice;
 use super::{Exit, Outcome};
 
 /// Runs the interface, where there is a terminal to run it on and nothing asks for a table; `None` where a table is to be
@@ -27,15 +32,18 @@ pub(super) fn interface(arguments: &Arguments) -> Option<Outcome> {
         Color::Always => Some(true),
         Color::Never => Some(false),
     };
+    if let Some(refused) = refused(model.as_deref(), work) {
+        return Some(refused);
+    }
     let abilities = Abilities::find(Wish { ascii: options.ascii, color })?;
     let threads = work.threads.map_or_else(Threads::available, |count| Threads::new(count.into()));
     let start = Start {
-        model: model.as_ref().map(|path| Source::File(absolute(path))),
+        model: model.as_ref().map(|path| Source::File(path.clone())),
         abilities,
         budget: work.budget.unwrap_or(BUDGET),
         threads,
-        set: work.set.clone(),
-        only: work.scenarios.clone(),
+        set: work.set.iter().map(|(name, value)| (composed(name), *value)).collect(),
+        only: work.scenarios.iter().map(|name| composed(name)).collect(),
     };
     Some(match run(start) {
         Ok(End::Left) => Outcome::only(String::new(), Exit::Done),
@@ -45,7 +53,18 @@ pub(super) fn interface(arguments: &Arguments) -> Option<Outcome> {
     })
 }
 
-/// The path from the root, so that it stays what it is; as it was given where the system does not say.
-fn absolute(path: &Path) -> PathBuf {
-    std::path::absolute(path).unwrap_or_else(|_| path.to_path_buf())
+/// A name as models have it.
+fn composed(name: &str) -> String {
+    name.nfc().collect()
+}
+
+/// Names that the model does not have, said before the screen is taken. A model that cannot be used is the interface's to
+/// show, and names given for whatever will be chosen are looked for when it is.
+fn refused(model: Option<&Path>, work: &Work) -> Option<Outcome> {
+    if work.scenarios.is_empty() && work.set.is_empty() {
+        return None;
+    }
+    let Reading::Model(original) = read(Some(model?)) else { return None };
+    let reason = Choice::new(&original.model, work).err()?;
+    Some(Outcome::only(format!("error: {}\n", cleanse(&reason)), Exit::Usage))
 }

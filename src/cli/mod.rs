@@ -43,9 +43,10 @@ pub enum Exit {
     Signal(i32),
 }
 
-impl From<Exit> for ExitCode {
-    fn from(exit: Exit) -> Self {
-        Self::from(match exit {
+impl Exit {
+    /// Its number, which is part of the contract.
+    pub fn number(self) -> u8 {
+        match self {
             Exit::Done => 0,
             Exit::Fault => 1,
             Exit::Usage => 2,
@@ -53,7 +54,13 @@ impl From<Exit> for ExitCode {
             Exit::Interrupted => 130,
             // As a shell reports a process that a signal ended.
             Exit::Signal(number) => u8::try_from(128 + number).unwrap_or(1),
-        })
+        }
+    }
+}
+
+impl From<Exit> for ExitCode {
+    fn from(exit: Exit) -> Self {
+        Self::from(exit.number())
     }
 }
 

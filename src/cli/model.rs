@@ -2,9 +2,9 @@
 
 use serde_json::{Value, json};
 
-use crate::diag::cleanse::is_hostile;
 use crate::diag::render::{position, render};
 use crate::diag::{Diagnostic, Severity, Sources};
+use crate::report::table::{self, Style};
 
 use super::arguments::{Format, Options};
 use super::{Exit, Outcome};
@@ -44,22 +44,7 @@ pub(super) fn remarks(found: &[Diagnostic], sources: &Sources, color: bool) -> S
     text.join("\n")
 }
 
-/// JSON that ends in a line break, harmless to a terminal, and in ASCII where asked for.
+/// JSON as the options want it.
 pub(super) fn pretty(value: &Value, options: &Options) -> String {
-    let text = format!("{value:#}\n");
-    // Line breaks between the lines are the only control characters that stand for themselves.
-    let is_escaped = |c: char| (options.ascii && !c.is_ascii()) || (is_hostile(c) && c != '\n');
-    if !text.contains(is_escaped) {
-        return text;
-    }
-    let mut escaped = String::with_capacity(text.len() + 64);
-    for c in text.chars() {
-        // Only strings hold such characters, and there every one may be written as its UTF-16 units.
-        if is_escaped(c) {
-            escaped.extend(c.encode_utf16(&mut [0; 2]).iter().map(|unit| format!("\\u{unit:04x}")));
-        } else {
-            escaped.push(c);
-        }
-    }
-    escaped
+    table::pretty(value, if options.ascii { Style::Ascii } else { Style::Unicode })
 }

@@ -5,9 +5,7 @@ use std::path::Path;
 use crate::analysis::prepare::Prepared;
 use crate::diag::cleanse::cleanse;
 use crate::model::{Model, Original};
-use crate::report::table::{
-    Limits, Page, Scene, Selection, Style, Table, UnknownColumn, csv, guide, json, latex, markdown, text,
-};
+use crate::report::table::{Command, Limits, Page, Scene, Selection, Style, Table, UnknownColumn, guide, written};
 use crate::shell::models::{Reading, read};
 use crate::shell::signal::Interrupt;
 use crate::shell::solver::BOXES;
@@ -15,7 +13,7 @@ use crate::shell::workers::Threads;
 
 use super::arguments::{BUDGET, Format, Options, Show, Work};
 use super::choice::Choice;
-use super::model::{pretty, remarks, wrong};
+use super::model::{remarks, wrong};
 use super::solve::{Solver, ended};
 use super::{Exit, Outcome, Screen};
 
@@ -75,13 +73,7 @@ pub(super) fn table(path: Option<&Path>, work: &Work, show: &Show, options: &Opt
 fn present(table: &Table<'_>, original: &Original, work: &Work, options: &Options, screen: Screen) -> Outcome {
     let style = if options.ascii { Style::Ascii } else { Style::Unicode };
     let page = Page { width: screen.width, style, color: screen.color };
-    let result = match options.format {
-        Format::Text => text(table, page),
-        Format::Csv => csv(table, style),
-        Format::Markdown => markdown(table, page),
-        Format::Json => pretty(&json(table), options),
-        Format::Latex => latex(table, page),
-    };
+    let result = written(table, options.format.into(), page);
     let (failed, exit) = ended(table.scenes, table.interrupted, work.strict);
     Outcome { result, remarks: remarks(&failed, &original.model.sources, screen.color_remarks), exit }
 }
@@ -94,7 +86,7 @@ fn no_such_column(unknown: &UnknownColumn) -> String {
     format!("error: no column is called \"{}\"{meant}\n", cleanse(&unknown.id))
 }
 
-/// The command that makes what is shown, by its word and model, without the options that make no difference to it.
+/// The command that makes what is shown, by its word and model.
 pub(super) fn command(
     what: Option<(&str, &Path)>,
     work: &Work,
@@ -103,36 +95,16 @@ pub(super) fn command(
     choice: &Choice,
     model: &Model,
 ) -> String {
-    let mut words: Vec<String> = vec!["restpoint".to_owned()];
-    if let Some((word, path)) = what {
-        words.extend([word.to_owned(), quoted(&path.to_string_lossy())]);
-    }
-    if !work.scenarios.is_empty() {
-        let names = choice.scenarios.iter().filter_map(|&scenario| model.scenarios.get(scenario));
-        words.extend(names.flat_map(|scenario| ["--scenario".to_owned(), quoted(&scenario.name)]));
-    }
-    for &(id, value) in &choice.set {
-        let name = model.parameters.get(id.0).map_or("", |parameter| &parameter.name);
-        words.extend(["--set".to_owned(), quoted(&format!("{name}={value}"))]);
-    }
-    if let Some(seconds) = work.budget {
-        words.extend(["--budget".to_owned(), seconds.to_string()]);
-    }
-    if let Some(list) = columns {
-        words.extend(["--columns".to_owned(), quoted(list)]);
-    }
-    if options.format != Format::Text {
-        words.extend(["--format".to_owned(), options.format.word().to_owned()]);
-    }
-    words.join(" ")
-}
-
-/// A word as a shell reads it.
-fn quoted(word: &str) -> String {
-    let is_plain = |c: char| c.is_alphanumeric() || "-_./=+,:@%".contains(c);
-    if !word.is_empty() && word.chars().all(is_plain) {
-        word.to_owned()
-    } else {
-        format!("'{}'", word.replace('\'', "'\\''"))
-    }
+    let path = what.map(|(_, path)| path.to_string_lossy());
+    let command = Command {
+        word: what.map_or("table", |(word, _)| word),
+        path: path.as_deref(),
+        model,
+        scenarios: if work.scenarios.is_empty() { &[] } else { &choice.scenarios },
+        set: &choice.set,
+        budget: work.budget,
+        columns,
+        form: options.format.into(),
+    };
+    command.to_string()
 }

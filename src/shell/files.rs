@@ -42,8 +42,20 @@ pub fn read_model(path: &Path) -> Result<Found> {
         bail!("{name} is a folder; name a model file in it");
     }
     let bytes = read_up_to(path, MODEL_LIMIT).map_err(|error| unreadable(&name, &error))?;
-    let folder = path.parent().unwrap_or(Path::new("")).to_path_buf();
-    Ok(Found { name, bytes, tables: Folder::at(folder) })
+    Ok(Found { name, bytes, tables: folder_of(path) })
+}
+
+/// A path as typed: `~/` at its beginning is the home folder, as shells have it.
+pub fn from_home(path: &Path) -> PathBuf {
+    match (path.strip_prefix("~"), std::env::home_dir()) {
+        (Ok(rest), Some(home)) => home.join(rest),
+        _ => path.to_path_buf(),
+    }
+}
+
+/// The folder that a model's tables are relative to.
+pub fn folder_of(model: &Path) -> Folder {
+    Folder::at(model.parent().unwrap_or(Path::new("")).to_path_buf())
 }
 
 fn unreadable(name: &str, error: &io::Error) -> anyhow::Error {

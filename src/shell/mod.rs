@@ -2,6 +2,7 @@
 
 pub mod catalogue;
 pub mod clock;
+pub mod errands;
 pub mod files;
 pub mod interface;
 pub mod memory;

@@ -5,11 +5,10 @@ use crate::analysis::equilibria::{Budget, all};
 use crate::analysis::passage::{Found, Passage, Ways, identify};
 use crate::analysis::prepare::Prepared;
 use crate::model::Model;
-use crate::report::table::{Names, Scene, Solved};
+use crate::report::table::{Limits, Names, Scene, Solved};
 
-/// Boxes on one face, beyond which the search goes on to the next. A face of a model that can be settled at all takes
-/// tens to thousands.
-pub const BOXES: usize = 50_000;
+/// Boxes on one face.
+pub const BOXES: usize = Limits::BOXES;
 
 /// Finds a scenario's equilibria and says everything of them.
 pub fn scene(model: &Model, prepared: &Prepared, scenario: usize, budget: &Budget<'_>) -> Scene {

@@ -6,17 +6,20 @@ use std::sync::Arc;
 
 use crate::analysis::equilibria::{Budget, Progress};
 use crate::analysis::passage::Ways;
-use crate::analysis::paths::follow;
+use crate::analysis::paths::{Ended, follow};
 use crate::analysis::prepare::Prepared;
 use crate::app::study::{TriedSet, World};
-use crate::app::task::Painting;
+use crate::app::task::{Compared, Found, Painting, Release};
 use crate::app::{Answer, Read, Source, Task};
 use crate::model::{Model, Name, Original, ParameterId};
+use crate::report::course::{Course, arrival, until_after};
 use crate::report::sketch::{Picture, View};
+use crate::report::table::{Names, Scene};
 
 use super::clock::Deadline;
+use super::files::from_home;
 use super::models::{COMPILED, Reading, compiled, read};
-use super::solver::{BOXES, names, scene};
+use super::solver::{BOXES, names, passages, scene};
 use super::workers::Threads;
 
 /// What a task is done with.
@@ -50,17 +53,39 @@ pub fn perform(task: Task, means: &Means<'_>) -> Answer {
             let scenes = scenes.iter().map(|found| &*found.0);
             Answer::Named(Arc::new(names(&mut ways, scenes, &|| (means.stop)() || deadline.is_past())))
         }
+        Task::Compare { world, scenes, names, budget } => {
+            Answer::Compared(Arc::new(compare(world, &scenes, names, budget, means)))
+        }
         Task::Paint(painting) => Answer::Painted(paint(&painting)),
         Task::Follow { world, scenario, start, until } => {
             let subject = world.prepared.subject(&world.original.model, scenario).ok();
             Answer::Followed(subject.map(|mut subject| Arc::new(follow(&mut subject, &start, until, &means.stop))))
         }
+        Task::Run(release) => Answer::Ran(run(&release, means).map(Arc::new)),
     }
+}
+
+/// Follows what was found in the first of several scenarios to each of the others.
+fn compare(world: Arc<World>, scenes: &[Found], ids: Vec<Vec<String>>, budget: f64, means: &Means<'_>) -> Compared {
+    let deadline = Deadline::after(budget);
+    let mut ways = Ways::new(&world.original.model, &world.prepared);
+    let scenes: Vec<Scene> = scenes.iter().map(|found| (*found.0).clone()).collect();
+    let stop = || (means.stop)() || deadline.is_past();
+    let passages = passages(&mut ways, &scenes, &stop);
+    let own_names = names(&mut ways, &scenes, &stop);
+    let mut all: Vec<String> = Vec::new();
+    for id in ids.iter().flatten() {
+        if !all.contains(id) {
+            all.push(id.clone());
+        }
+    }
+    let names = Names { unfollowed: vec![Vec::new(); ids.len()], ids };
+    Compared { world, scenes, names, own_names, passages, ids: all }
 }
 
 fn read_source(source: &Source, set: &[(String, f64)], edition: u64) -> Read {
     let reading = match source {
-        Source::File(path) => read(Some(path)),
+        Source::File(path) => read(Some(&from_home(path))),
         Source::Compiled(index) => match COMPILED.get(*index) {
             Some(model) => compiled(model),
             None => return Read::Unreadable("there is no such model".to_owned()),
@@ -86,8 +111,14 @@ fn known(model: &Model, set: &[(String, f64)]) -> Vec<(ParameterId, f64)> {
         _ => None,
     };
     let allowed = |id: ParameterId, value| model.parameters.get(id.0).is_some_and(|one| one.ruled_out(value).is_none());
-    let found = set.iter().filter_map(|(name, value)| Some((find(name)?, *value)));
-    found.filter(|&(id, value)| allowed(id, value)).collect()
+    let mut found: Vec<(ParameterId, f64)> = Vec::new();
+    for (id, value) in set.iter().filter_map(|(name, value)| Some((find(name)?, *value))) {
+        if allowed(id, value) {
+            found.retain(|(other, _)| *other != id);
+            found.push((id, value));
+        }
+    }
+    found
 }
 
 /// The model with the tried scenario at its end, in the search box of the file.
@@ -105,6 +136,29 @@ fn prepare(world: &World, tried: &TriedSet, edition: u64) -> Result<Arc<World>, 
         }
         Err(found) => Err(found.first().map_or_else(String::new, |problem| problem.message.clone())),
     }
+}
+
+/// How many times as long a path is followed to see where it goes to.
+const PATIENCE: f64 = 8.0;
+
+fn run(release: &Release, means: &Means<'_>) -> Option<Course> {
+    let Release { world, scene, equilibrium, start, until } = release;
+    let solved = scene.solved()?;
+    let state = &solved.equilibria.list.get(*equilibrium)?.state;
+    let linear = solved.assessment.equilibria.get(*equilibrium).and_then(|assessed| assessed.linear.as_ref().ok());
+    let mut subject = world.prepared.subject(&world.original.model, scene.0.scenario).ok()?;
+    let step = subject.step();
+    let list = &solved.equilibria.list;
+    let mut path = follow(&mut subject, start, *until, &means.stop);
+    let mut there = arrival(&path, list, step.is_some());
+    if there.is_none() && path.ended == Ended::InTime {
+        let long = follow(&mut subject, start, PATIENCE * until, &means.stop);
+        there = arrival(&long, list, step.is_some());
+        // Where it goes nowhere in that time either, a short path is seen better.
+        path = if there.is_some() { long } else { path };
+    }
+    let path = until_after(path, there.unwrap_or(0.0));
+    Some(Course::new(&path, state, linear, step))
 }
 
 fn paint(painting: &Painting) -> Option<Arc<Picture>> {

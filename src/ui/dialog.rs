@@ -2,7 +2,7 @@
 
 use unicode_width::UnicodeWidthStr;
 
-use super::paint::{Page, wrapped};
+use super::paint::Page;
 use super::sketch::Shown;
 use crate::app::geometry::{Area, equilibria};
 use crate::app::keymap::{of, place};
@@ -74,26 +74,34 @@ pub(super) fn message(page: &mut Page<'_>, area: Area, title: &str, lines: &[Str
 }
 
 /// A line to type in, above the status.
-pub(super) fn entry(page: &mut Page<'_>, area: Area, entry: &Entry) {
-    let (line, _) = area.bottom(3);
+pub(super) fn entry(app: &App, page: &mut Page<'_>, area: Area, entry: &Entry) {
+    let (line, _) = area.bottom(4);
     page.clear(line);
     page.rule(line, 0);
-    let asked = match entry.purpose {
-        Purpose::Open => "path of a model: ",
-        Purpose::Value => "new value: ",
-        Purpose::Write => "write to: ",
-        Purpose::Record => "name of the new scenario: ",
-    };
-    let after = page.text(line, [0, 1], asked, Ink::Strong);
+    let after = page.text(line, [0, 1], &asked(app, entry), Ink::Strong);
     // The end of a long text is what matters: it is where the cursor is.
     let room = usize::from(line.columns.saturating_sub(after + 1));
     let before = &entry.text[..entry.cursor];
     let skipped = before.char_indices().map(|(place, _)| place).find(|&place| before[place..].width() < room.max(2));
     let from = skipped.unwrap_or(0);
-    let at = page.text(line, [after, 1], &before[from..], Ink::Plain);
+    // What is only suggested looks selected: typing takes its place.
+    let ink = if entry.suggested { Ink::Chosen } else { Ink::Plain };
+    let at = page.text(line, [after, 1], &before[from..], ink);
     let under = entry.text[entry.cursor..].chars().next().unwrap_or(' ').to_string();
     let end = page.text(line, [at, 1], &under, Ink::Chosen);
     page.text(line, [end, 1], entry.text[entry.cursor..].strip_prefix(under.as_str()).unwrap_or(""), Ink::Plain);
-    let hint = wrapped(&entry.hint, line.columns.into()).into_iter().next().unwrap_or_default();
-    page.text(line, [0, 2], &hint, Ink::Warning);
+    let (hint, _) = line.bottom(2);
+    page.words(hint, &entry.hint, Ink::Strong);
+}
+
+fn asked(app: &App, entry: &Entry) -> String {
+    let parameter = || Some(app.study.as_ref()?.parameter()?.1.name.clone());
+    match &entry.purpose {
+        Purpose::Open => "path of a model: ".to_owned(),
+        Purpose::Value => format!("new value of {}: ", parameter().unwrap_or_default()),
+        Purpose::Write => "write the table to: ".to_owned(),
+        Purpose::WriteScreen => "write the screen to: ".to_owned(),
+        Purpose::Record => "name of the new scenario: ".to_owned(),
+        Purpose::RecordTo(_) => "write the copy to: ".to_owned(),
+    }
 }

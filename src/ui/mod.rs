@@ -3,11 +3,16 @@
 //! [`view`] is the way in, [`text()`] the same as text; `page` has what all screens share (heading, status, keys), `paint` writes texts and grids and
 //! knows what an ink looks like, and each screen has a file of its own. To add a screen: its file, its arm in [`view`].
 
+mod beside;
 mod chooser;
 mod dialog;
+mod difference;
 mod equilibria;
+mod interactions;
+mod knock;
 mod page;
 mod paint;
+mod single;
 mod sketch;
 mod text;
 mod values;
@@ -38,11 +43,14 @@ fn body(app: &App, page: &mut Page<'_>, area: Area) {
     match (&app.dialog, app.screen, &app.study) {
         (Some(Dialog::Help { from }), ..) => dialog::help(app, page, area, *from),
         (Some(Dialog::Message { title, lines, from }), ..) => dialog::message(page, area, title, lines, *from),
-        (_, Screen::Chooser, _) | (.., None) => chooser::draw(app, page, area),
-        (_, Screen::Values, Some(study)) => values::draw(app, study, page, area),
+        (_, Screen::Chooser, _) | (.., None) => chooser::draw(app, page),
+        (_, Screen::Values, Some(study)) => values::draw(app, study, page),
+        (_, Screen::SideBySide, Some(study)) => beside::draw(app, study, page),
+        (_, Screen::Interactions, Some(study)) => interactions::draw(app, study, page),
+        (_, Screen::Knock, Some(study)) => knock::draw(app, study, page),
         (_, _, Some(study)) => equilibria::draw(app, study, page),
     }
     if let Some(Dialog::Entry(entry)) = &app.dialog {
-        dialog::entry(page, area, entry);
+        dialog::entry(app, page, area, entry);
     }
 }

@@ -1,7 +1,7 @@
 //! What all screens share: the heading, the line on what happens, the keys that matter.
 
 use super::paint::Page;
-use crate::app::action::{Action, Step};
+use crate::app::action::{Action, Direction, Step};
 use crate::app::geometry::{Area, SMALLEST};
 use crate::app::keymap::{Place, key_of, place};
 use crate::app::{App, Screen, Study};
@@ -55,6 +55,10 @@ pub(super) fn status(app: &App, page: &mut Page<'_>, area: Area) {
         page.text(area, [0, 0], &text, Ink::Plain);
     } else if app.reading.is_some() {
         page.text(area, [0, 0], "reading", Ink::Plain);
+    } else if let Some(text) = offered(app) {
+        page.text(area, [0, 0], &text, Ink::Plain);
+    } else if app.screen == Screen::Chooser && app.chooser.is_listing {
+        page.text(area, [0, 0], "looking for models", Ink::Plain);
     } else {
         let long =
             "A local result about a model. Limits are set by the authority, under local law and licensed practice.";
@@ -62,6 +66,15 @@ pub(super) fn status(app: &App, page: &mut Page<'_>, area: Area) {
         let text = [long, short].into_iter().find(|text| text.len() <= area.columns.into());
         page.text(area, [0, 0], text.unwrap_or("A local result about a model; the authority sets limits."), Ink::Faint);
     }
+}
+
+/// What was tried last time and is in no file, and how to have it again.
+fn offered(app: &App) -> Option<String> {
+    let offer = app.study.as_ref()?.offer.as_ref()?;
+    let key = key_of(place(app), Action::TakeUp)?;
+    let values: Vec<String> = offer.values.iter().map(|(name, value)| format!("{name} = {value}")).collect();
+    let over = &offer.scenario;
+    Some(format!("{key} takes up what was tried last time over \"{over}\": {}", values.join(", ")))
 }
 
 /// The keys that matter most where the user is.
@@ -95,7 +108,32 @@ fn hints(place: Place) -> Vec<(Action, &'static str)> {
             (Action::Type, "type"),
             (Action::Undo, "undo"),
             (Action::Record, "new scenario"),
+            (Action::Write, "write"),
             (Action::Show(Screen::Equilibria), "equilibria"),
+            leave,
+        ],
+        Place::On(Screen::Interactions) => vec![
+            help,
+            (Action::Step(Step::On), "next"),
+            (Action::Other, "direct or net"),
+            (Action::Absent, "absent too"),
+            (Action::Scroll(Direction::Right), "columns"),
+            (Action::Scroll(Direction::Down), "rows"),
+            (Action::Scenario(Step::On), "scenario"),
+            (Action::Show(Screen::Equilibria), "equilibria"),
+            (Action::Write, "write"),
+            leave,
+        ],
+        Place::On(Screen::Knock) => vec![
+            help,
+            (Action::Step(Step::On), "next"),
+            (Action::Knock(Step::Back), "take more"),
+            (Action::Knock(Step::On), "less"),
+            (Action::Other, "who"),
+            (Action::Scroll(Direction::Down), "species"),
+            (Action::Scenario(Step::On), "scenario"),
+            (Action::Show(Screen::Equilibria), "equilibria"),
+            (Action::Write, "write"),
             leave,
         ],
         Place::On(_) => vec![
@@ -113,6 +151,8 @@ fn hints(place: Place) -> Vec<(Action, &'static str)> {
         Place::Pointing => vec![(Action::Stop, "done"), (Action::Backwards, "where from"), (Action::NoPoint, "away")],
         Place::Dragging => vec![(Action::Stop, "done"), (Action::Closer, "closer"), (Action::Wider, "wider")],
         Place::Reading => vec![(Action::Step(Step::On), "on"), (Action::Stop, "back")],
-        Place::Typing => vec![(Action::Accept, "take it"), (Action::Stop, "leave it")],
+        Place::Typing => {
+            vec![(Action::Accept, "take it"), (Action::Stop, "leave it"), (Action::Complete, "complete, or change")]
+        }
     }
 }

@@ -6,10 +6,14 @@
 mod common;
 
 use common::{Contender, best, table};
-use restpoint::analysis::field::{Flow, Frame, Held, Octant, Slice, Window};
+use restpoint::analysis::assess::assess;
+use restpoint::analysis::equilibria::{Budget, OneByOne, all};
+use restpoint::analysis::field::{Flow, Frame, Held, LINEAR, Octant, Scale, Sight, Slice, Window};
 use restpoint::analysis::subject::Subject;
 use restpoint::model::load::{NoFiles, load};
 use restpoint::model::system::System;
+use restpoint::report::sketch::{Extras, Picture, Plot, Size, Style, View, drawing};
+use restpoint::report::table::{Names, Solved};
 
 const COLUMNS: usize = 200;
 const ROWS: usize = 100;
@@ -33,8 +37,12 @@ fn main() {
     let frame = Frame::new(WINDOW, COLUMNS, ROWS);
     let values: [f64; 8] = [0.9, 900.0, 0.012, 0.02, 0.25, 0.3, 0.35, 1.0];
     let octants = |x: &[f64], y: &[f64]| {
-        let cells = x.iter().zip(y).filter_map(|(&x, &y)| Octant::of(frame.seen([1.0, 1.0], [x, y])));
-        cells.map(|octant| octant.index() as f64).sum::<f64>()
+        let sight = Sight::new(&frame);
+        let rows = x.chunks(COLUMNS).zip(y.chunks(COLUMNS)).enumerate();
+        let cells =
+            rows.flat_map(|(row, (x, y))| x.iter().zip(y).enumerate().map(move |(c, (&x, &y))| (c, row, [x, y])));
+        let octants = cells.filter_map(|(column, row, rates)| Octant::of(sight.at(column, row, rates)));
+        octants.map(|octant| octant.index() as f64).sum::<f64>()
     };
     let mut out = [vec![0.0; CELLS], vec![0.0; CELLS]];
     let mut contenders = [
@@ -55,6 +63,51 @@ fn main() {
     let times = best(&mut contenders, 60, 3);
     println!("Ratios are to the first line; 60 µs for {CELLS} cells are 3 ns a cell.");
     table("direction field, 200 x 100", &contenders, &times, &["2.0 ns", "3.0 ns", "", ""]);
+    whole("prey and predator", MODEL, WINDOW, LINEAR);
+    whole("rivals", RIVALS, Window { x: [0.0, 17.0], y: [0.0, 17.0] }, LINEAR);
+    whole("rivals, logarithmic", RIVALS, Window { x: [0.1, 20.0], y: [0.1, 20.0] }, [Scale::Logarithmic; 2]);
+}
+
+/// Rivals of which either excludes the other, with a saddle and the lines into it.
+const RIVALS: &str = "\
+title: rivals
+time: yr
+species: {x: {upper: 20}, y: {upper: 20}}
+parameters: {a: 2}
+change: {x: x*(15 - x - a*y), y: y*(14 - y - a*x)}
+";
+
+/// Everything that a screen needs anew when a key moves the window: numbers and characters of 100 x 45 cells, in
+/// microseconds; at most 3000.
+fn whole(name: &str, yaml: &str, window: Window, scales: [Scale; 2]) {
+    const SIZE: Size = Size { columns: 108, rows: 49 };
+    let (Some(model), ..) = load("m.yaml", yaml.as_bytes(), &NoFiles) else { panic!("the model is sound") };
+    let Ok(system) = System::new(&model, &[]) else { panic!("the model has values") };
+    let sides = model.species.iter().map(|species| [0.0, species.upper.unwrap_or(1.0)]).collect();
+    let mut subject = Subject::new(&model, &system.graph, &system.plans[0], sides);
+    let budget = Budget { boxes: 20_000, stop: &|| false, workers: &OneByOne, observer: None };
+    let (graph, problem) = subject.problem();
+    let equilibria = all(graph, &problem, &budget);
+    let assessment = assess(&mut subject, &equilibria, &|| false);
+    let solved = Solved { values: system.plans[0].values.clone(), equilibria, assessment };
+    let ids = Names::alone(solved.equilibria.list.len()).ids.pop().unwrap_or_default();
+    let slice = Slice::new(&subject, [0, 1], &solved.equilibria, &solved.assessment);
+    let view = View { model: &model, scenario: 0, solved: &solved, ids: &ids, slice: &slice, window, scales };
+    let mut other = subject.clone();
+    let picture = Picture::new(&mut other, &view, &Plot::of(SIZE));
+    let mut contenders = [
+        Contender::new("picture and drawing", 1000, || {
+            let picture = Picture::new(&mut subject, &view, &Plot::of(SIZE));
+            let grid = drawing(&view, &picture, &Extras::default(), SIZE, Style::Unicode);
+            f64::from(u32::from(grid.at(20, 20).0))
+        }),
+        Contender::new("drawing alone", 1000, || {
+            let grid = drawing(&view, &picture, &Extras::default(), SIZE, Style::Unicode);
+            f64::from(u32::from(grid.at(20, 20).0))
+        }),
+    ];
+    let times = best(&mut contenders, 20, 20);
+    table(&format!("{name}, 100 x 45, microseconds"), &contenders, &times, &["3000", ""]);
 }
 
 #[inline(never)]

@@ -129,6 +129,6 @@ fn every_exit_code_is_as_listed() {
         (Exit::Interrupted, "interrupted"),
     ];
     for (exit, meaning) in listed {
-        assert!(README.contains(&format!("\n| {} | {meaning}", exit as u8)), "{exit:?}");
+        assert!(README.contains(&format!("\n| {} | {meaning}", exit.number())), "{exit:?}");
     }
 }

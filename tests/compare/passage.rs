@@ -214,7 +214,7 @@ fn turned(passage: &Passage) -> Passage {
         Fate::LeavesBox { at, species } => Fate::LeavesBox { at: 1.0 - at, species: *species },
         Fate::NotFollowed(Reason::Rough(at)) => Fate::NotFollowed(Reason::Rough(1.0 - at)),
         Fate::NotFollowed(Reason::Crossing(at)) => Fate::NotFollowed(Reason::Crossing(1.0 - at)),
-        other => other.clone(),
+        other @ Fate::NotFollowed(_) => other.clone(),
     };
     let all = |fates: &[Fate]| fates.iter().map(turn).collect();
     Passage { forward: all(&passage.backward), backward: all(&passage.forward) }

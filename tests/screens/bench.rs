@@ -1,15 +1,19 @@
 //! A bench to try screens on: the state, tasks done at once, what is shown as text, and what was asked of the outside.
 //!
+//! Errands are run at once too, on real files; what is kept between runs is kept in a folder of the bench's own.
 //! [`Bench::open`] reads a shipped model, [`Bench::of`] one from a text. [`Bench::press`] takes keys as they are written on a
 //! keyboard, `"vv<Down>.<Esc>"`. Where a test is about what happens while work is under way, [`Bench::hold`] puts tasks off
-//! until [`Bench::work`]. Searches of the same text are done once for all tests.
+//! until [`Bench::work`].
 #![allow(dead_code, reason = "each file uses its own part")]
 
 use std::collections::VecDeque;
 use std::path::{Path, PathBuf};
+use std::rc::Rc;
 
 use restpoint::app::{App, Depth, Effect, JobId, Key, Msg, Size, Source, Task, update};
 use restpoint::report::sketch::Style;
+use restpoint::shell::errands::Errands;
+use restpoint::shell::memory::Memory;
 use restpoint::shell::tasks::{Means, perform};
 use restpoint::shell::workers::Threads;
 use restpoint::ui;
@@ -20,6 +24,10 @@ pub(crate) struct Bench {
     pub(crate) app: App,
     /// What was asked of the outside and is no task, the last at the end; [`Bench::taken`] empties it.
     pub(crate) asked: Vec<Effect>,
+    errands: Errands,
+    memory: Memory,
+    /// Where what is kept between runs lies.
+    state: Rc<TempDir>,
     /// Tasks that are put off.
     waiting: VecDeque<(JobId, Task)>,
     is_held: bool,
@@ -33,8 +41,21 @@ pub(crate) const SIZES: [[u16; 2]; 3] = [[60, 20], [80, 24], [200, 50]];
 impl Bench {
     /// No model is open: the chooser.
     pub(crate) fn empty() -> Self {
+        Self::remembering(Rc::new(tempfile::tempdir().unwrap()))
+    }
+
+    /// The same, with what was kept in a folder.
+    fn remembering(state: Rc<TempDir>) -> Self {
         let app = App::new(size(SIZES[1]), Style::Unicode, Depth::None);
-        Self { app, asked: Vec::new(), waiting: VecDeque::new(), is_held: false, folder: None }
+        let memory = Memory::at(state.path().to_path_buf());
+        let errands = Errands::new(memory.clone());
+        let (asked, waiting) = (Vec::new(), VecDeque::new());
+        Self { app, asked, errands, memory, state: state, waiting, is_held: false, folder: None }
+    }
+
+    /// The program is left and started again: nothing is known but what was kept.
+    pub(crate) fn restarted(&self) -> Self {
+        Self::remembering(Rc::clone(&self.state))
     }
 
     /// The model of that name in `scenarios`, read and searched, at 80×24.
@@ -44,12 +65,16 @@ impl Bench {
 
     /// The model with that text, read and searched.
     pub(crate) fn of(yaml: &str) -> Self {
+        Self::empty().reading(yaml)
+    }
+
+    /// Opens the model with that text.
+    pub(crate) fn reading(mut self, yaml: &str) -> Self {
         let folder = tempfile::tempdir().unwrap();
         let path = folder.path().join("m.yaml");
         std::fs::write(&path, yaml).unwrap();
-        let mut bench = Self::empty();
-        bench.folder = Some(folder);
-        bench.with(&path)
+        self.folder = Some(folder);
+        self.with(&path)
     }
 
     /// Opens a model.
@@ -80,14 +105,19 @@ impl Bench {
 
     /// Something happens; what it asks for is done, and what that asks for.
     pub(crate) fn tell(&mut self, msg: Msg) {
-        let mut effects: VecDeque<Effect> = update(&mut self.app, msg).into();
+        let effects = update(&mut self.app, msg);
+        self.perform(effects);
+    }
+
+    fn perform(&mut self, effects: Vec<Effect>) {
+        let mut effects = VecDeque::from(effects);
         while let Some(effect) = effects.pop_front() {
             match effect {
                 Effect::Ask(id, task) if self.is_held => self.waiting.push_back((id, task)),
                 Effect::Ask(id, task) => effects.extend(self.done(id, task)),
                 Effect::Stop(id) => self.waiting.retain(|(other, _)| *other != id),
                 Effect::Redraw => {}
-                other => self.asked.push(other),
+                other => effects.extend(self.outside(other)),
             }
         }
     }
@@ -95,6 +125,24 @@ impl Bench {
     fn done(&mut self, id: JobId, task: Task) -> Vec<Effect> {
         let means = Means { threads: Threads::new(1), stop: &|| false, observer: &|_| {} };
         update(&mut self.app, Msg::Answered(id, perform(task, &means)))
+    }
+
+    /// What is no task: errands are run, the rest is only noted.
+    fn outside(&mut self, effect: Effect) -> Vec<Effect> {
+        self.asked.push(effect.clone());
+        let mut answers = Vec::new();
+        match effect {
+            Effect::WriteScreen { path, replace } => {
+                let text = self.text();
+                answers.extend(self.errands.run(Effect::Write { path, text, replace }));
+            }
+            Effect::List(listing, given) => {
+                Errands::list(&self.memory, &given, &mut |entry| answers.push(Msg::Listed(listing, entry)));
+                answers.push(Msg::AllListed(listing));
+            }
+            errand => answers.extend(self.errands.run(errand)),
+        }
+        answers.into_iter().flat_map(|answer| update(&mut self.app, answer)).collect()
     }
 
     /// Puts off tasks from now on.
@@ -106,14 +154,8 @@ impl Bench {
     pub(crate) fn work(&mut self) {
         self.is_held = false;
         while let Some((id, task)) = self.waiting.pop_front() {
-            for effect in self.done(id, task) {
-                match effect {
-                    Effect::Ask(id, task) => self.waiting.push_back((id, task)),
-                    Effect::Stop(id) => self.waiting.retain(|(other, _)| *other != id),
-                    Effect::Redraw => {}
-                    other => self.asked.push(other),
-                }
-            }
+            let effects = self.done(id, task);
+            self.perform(effects);
         }
     }
 
@@ -139,6 +181,11 @@ impl Bench {
         for key in keys_of(keys) {
             self.tell(Msg::Struck(key));
         }
+    }
+
+    /// Pastes a text.
+    pub(crate) fn paste(&mut self, text: &str) {
+        self.tell(Msg::Pasted(text.to_owned()));
     }
 
     /// What is shown.

@@ -3,5 +3,12 @@
 #![allow(clippy::expect_used, clippy::panic, clippy::unwrap_used, reason = "a test fails by panicking")]
 
 mod bench;
+mod chooser;
+mod interactions;
+mod kept;
+mod knock;
 mod skeleton;
+mod texts;
+mod values;
 mod walk;
+mod written;

@@ -16,8 +16,8 @@ const STEPS: usize = 1000;
 /// Error of a step, in cells.
 const ERROR: f64 = 1e-3;
 
-/// And at most, as a share of the region: cells may be wider than all that happens.
-const COARSEST: f64 = 1e-7;
+/// And at most, as a share of the largest abundance at an equilibrium: cells may be wider than all that happens.
+const COARSEST: f64 = 1e-6;
 
 /// The error of a step that rounding still lets us see, relative.
 const FINEST: f64 = 1e-13;
@@ -57,6 +57,8 @@ pub(super) struct Plane<'p> {
     pub(super) frame: &'p Frame,
     /// Where a path is no longer of interest: lower and upper side of each axis, around the window.
     pub(super) region: [[f64; 2]; 2],
+    /// The largest abundance at any equilibrium, along each axis.
+    pub(super) extent: [f64; 2],
     /// Equilibria at which a branch may end.
     pub(super) others: &'p [[f64; 2]],
 }
@@ -117,7 +119,7 @@ impl Plane<'_> {
                 Scale::Logarithmic => point[i].clamp(low, high) * elementary::ln(high / low) / steps,
             };
             let finest = (FINEST * point[i].abs()).max(f64::MIN_POSITIVE);
-            let absolute = (ERROR * cell).min(COARSEST * (self.region[i][1] - self.region[i][0]));
+            let absolute = (ERROR * cell).min(COARSEST * self.extent[i]);
             Tolerance { absolute: if absolute > finest { absolute } else { finest }, relative: 0.0 }
         })
     }

@@ -46,7 +46,9 @@ pub fn portrait(
         let through = straight(linear, slice, is_map);
         if subject.species() == 2 && !is_map && is_simple_saddle(linear) {
             let others = others(flow, found, index);
-            let plane = Plane { flow, frame: &frame, region: region(subject, slice, &frame), others: &others };
+            let region = region(subject, slice, &frame);
+            let extent = extent(&others, place, region);
+            let plane = Plane { flow, frame: &frame, region, extent, others: &others };
             let toward = through.iter().filter(|line| line.approaches).filter(|line| divides_any(line, place));
             let both = toward.flat_map(|line| [line.along, line.along.map(|part| -part)]);
             divides.extend(both.flat_map(|toward| plane.branch(place, toward)));
@@ -83,6 +85,14 @@ fn region(subject: &Subject<'_>, slice: &Slice, frame: &Frame) -> [[f64; 2]; 2] 
         [0.0f64.min(low), high + AWAY * (high - low)]
     };
     [around(slice.x, frame.window.x), around(slice.y.unwrap_or(slice.x), frame.window.y)]
+}
+
+/// The largest abundance at any equilibrium along each axis; where nobody is there, the region's side.
+fn extent(others: &[[f64; 2]], saddle: [f64; 2], region: [[f64; 2]; 2]) -> [f64; 2] {
+    [0, 1].map(|i: usize| {
+        let largest = others.iter().fold(saddle[i], |largest, other| largest.max(other[i]));
+        if largest > 0.0 { largest } else { region[i][1] }
+    })
 }
 
 fn others(flow: &Flow, found: &Equilibria, index: usize) -> Vec<[f64; 2]> {

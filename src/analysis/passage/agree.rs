@@ -6,8 +6,8 @@ use super::{Fate, Passage, Reason};
 const SAME_FOLD: f64 = 1e-4;
 
 /// Keeps arrivals that lead back to where they began, and folds at which two meet each other.
-pub(super) fn agreed(passage: Passage) -> Passage {
-    let Passage { forward, backward } = &passage;
+pub(super) fn agreed(passage: &Passage) -> Passage {
+    let Passage { forward, backward } = passage;
     let forward_kept = forward.iter().enumerate().map(|(place, fate)| kept(place, fate, [forward, backward]));
     let backward_kept = backward.iter().enumerate().map(|(place, fate)| kept(place, fate, [backward, forward]));
     Passage { forward: forward_kept.collect(), backward: backward_kept.collect() }

@@ -176,7 +176,7 @@ fn solve(a: &mut [f64], b: &mut [f64]) -> Option<f64> {
     let mut sign = 1.0;
     for (row, b) in a.chunks_exact_mut(n).zip(b.iter_mut()) {
         let scale = 1.0 / largest(row);
-        row.iter_mut().for_each(|x| *x *= scale);
+        scaled(row, scale);
         *b *= scale;
     }
     for k in 0..n {
@@ -199,7 +199,7 @@ fn solve(a: &mut [f64], b: &mut [f64]) -> Option<f64> {
 fn smallest_pivot(a: &mut [f64], n: usize) -> f64 {
     for row in a.chunks_exact_mut(n) {
         let scale = 1.0 / largest(row);
-        row.iter_mut().for_each(|x| *x *= scale);
+        scaled(row, scale);
     }
     let mut least = f64::INFINITY;
     for k in 0..n {
@@ -209,6 +209,12 @@ fn smallest_pivot(a: &mut [f64], n: usize) -> f64 {
         eliminate(a, n, k, &mut |_, _, _| ());
     }
     least
+}
+
+fn scaled(row: &mut [f64], scale: f64) {
+    for x in row {
+        *x *= scale;
+    }
 }
 
 fn largest(row: &[f64]) -> f64 {

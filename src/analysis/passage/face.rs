@@ -44,14 +44,16 @@ impl Face {
             let fed = |&i: &usize| !moves[i] && (first[i] != zero || second[i] != zero);
             let fed: Vec<usize> = (0..moves.len()).filter(fed).collect();
             if fed.is_empty() {
-                return Self::compiled(graph, rows, &moves, [first, second]);
+                return Self::compiled(graph, rows, &moves, &[first, second]);
             }
-            fed.into_iter().for_each(|i| moves[i] = true);
+            for i in fed {
+                moves[i] = true;
+            }
         }
         None
     }
 
-    fn compiled(graph: &mut Graph, rows: &Rows, moves: &[bool], whole: [Vec<AtZero>; 2]) -> Option<Self> {
+    fn compiled(graph: &mut Graph, rows: &Rows, moves: &[bool], whole: &[Vec<AtZero>; 2]) -> Option<Self> {
         let moving: Vec<usize> = (0..moves.len()).filter(|&i| moves[i]).collect();
         let mut chosen: [Vec<NodeId>; 2] = [Vec::new(), Vec::new()];
         for &i in &moving {

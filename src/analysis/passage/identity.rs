@@ -65,10 +65,17 @@ impl<'e> Register<'_, 'e> {
     /// From an earlier scenario, between what has no number yet and what has one that is free; `None` where there is none.
     fn passage(&mut self, place: usize, scenario: Found<'e>, own: &[Option<usize>]) -> Option<Passage> {
         let (earlier, numbers) = self.known.get(place)?;
-        let is_free = |old: usize| !own.contains(&Some(numbers[old]));
-        let is_open = own.iter().any(Option::is_none) && (0..numbers.len()).any(is_free);
-        let wanted = |end: usize, place: usize| if end == 0 { is_free(place) } else { own[place].is_none() };
-        is_open.then(|| self.ways.passage_of([*earlier, scenario], &wanted, self.stop))
+        let later = &self.known[place + 1..];
+        // One that was there later too has been followed from there.
+        let is_lost = |old: usize| !later.iter().any(|(_, later)| later.contains(&numbers[old]));
+        let is_wanted = |old: usize| !own.contains(&Some(numbers[old])) && is_lost(old);
+        let arrived = |new: usize, forward: &[Fate]| {
+            forward.iter().any(|fate| matches!(fate, Fate::Arrives { at, .. } if *at == new))
+        };
+        let is_next = later.is_empty();
+        let back = |new: usize, forward: &[Fate]| own[new].is_none() && (is_next || arrived(new, forward));
+        let is_open = own.iter().any(Option::is_none) && (is_next || (0..numbers.len()).any(is_wanted));
+        is_open.then(|| self.ways.passage_of([*earlier, scenario], &is_wanted, &back, self.stop))
     }
 
     fn new_number(&mut self) -> usize {

@@ -60,7 +60,7 @@ mod tests {
         };
         check(|x| x * x - 2.0, 2.0, 2f64.sqrt());
         check(|x| 1.0 - x.exp(), 3.0, 0.0);
-        check(|x| (x - 0.25).powi(3), 1.0, 0.25);
+        check(|x| x.powi(9) - 0.5, 1.0, 0.5f64.powf(1.0 / 9.0));
         check(|x| 0.5 - x, 0.5, 0.5);
         assert_eq!(crossing(&mut |x| Some(x + 1.0), 1.0, 1.0), None);
         assert_eq!(crossing(&mut |_| None, 1.0, 1.0), None);

@@ -141,15 +141,17 @@ impl Ways {
 
     /// Follows every equilibrium of either scenario to the other. Once `stop` says so the rest is not followed.
     pub fn passage(&mut self, ends: [Found<'_>; 2], stop: &dyn Fn() -> bool) -> Passage {
-        self.passage_of(ends, &|_, _| true, stop)
+        self.passage_of(ends, &|_| true, &|_, _| true, stop)
     }
 
-    /// As [`Ways::passage`], of only those for which `wanted` says so, asked with 0 or 1 for the scenario and the place in
-    /// its list; the others count as stopped, and no pair with them is made.
+    /// As [`Ways::passage`], of only those for which `wanted` says so, asked with the place in the first list, and `back`,
+    /// asked with the place in the second and what became of the first; the others count as stopped, and no pair with them
+    /// is made.
     pub fn passage_of(
         &mut self,
         ends: [Found<'_>; 2],
-        wanted: &dyn Fn(usize, usize) -> bool,
+        wanted: &dyn Fn(usize) -> bool,
+        back: &dyn Fn(usize, &[Fate]) -> bool,
         stop: &dyn Fn() -> bool,
     ) -> Passage {
         let [first, second] = ends.map(|end| self.scenarios.get(end.scenario).cloned().flatten());
@@ -161,13 +163,14 @@ impl Ways {
         let values = [&first.1[..], &second.1[..]];
         let mut way =
             Way { graph: &mut self.graph, rows, values, sides: &self.sides, ends, faces: HashMap::new(), stop };
-        let mut fates = |end: usize| -> Vec<Fate> {
+        let mut fates = |end: usize, wanted: &dyn Fn(usize) -> bool| -> Vec<Fate> {
             let places = 0..ends[end].list.len();
             let stopped = || Fate::NotFollowed(Reason::Stopped);
-            places.map(|place| if wanted(end, place) { way.fate(end, place) } else { stopped() }).collect()
+            places.map(|place| if wanted(place) { way.fate(end, place) } else { stopped() }).collect()
         };
-        let (forward, backward) = (fates(0), fates(1));
-        agree::agreed(Passage { forward, backward })
+        let forward = fates(0, wanted);
+        let backward = fates(1, &|place| back(place, &forward));
+        agree::agreed(&Passage { forward, backward })
     }
 }
 

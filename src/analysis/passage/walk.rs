@@ -332,7 +332,9 @@ impl<'w, 'f> Walk<'w, 'f> {
             let probe = self.ahead(stride, &self.here.tangent);
             let Some((mut direction, orientation)) = self.curve.tangent(&probe, &self.here.tangent) else { continue };
             if orientation != self.orientation {
-                direction.iter_mut().for_each(|part| *part = -*part);
+                for part in &mut direction {
+                    *part = -*part;
+                }
             }
             let mut at = self.ahead(stride, &direction);
             let Some(corrected) = self.curve.correct(&mut at, &direction) else { continue };

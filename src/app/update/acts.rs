@@ -1,9 +1,10 @@
 //! What the user wants, on every screen.
 
-use super::{entry, sketch, values};
+use super::{entry, interactions, knock, record, session, sketch, values};
 use crate::app::action::{Action, Step};
+use crate::app::beside::ids;
 use crate::app::geometry::{equilibria, listed, values as parts_of_values};
-use crate::app::{App, Dialog, Effect, Purpose, Screen};
+use crate::app::{App, Dialog, Effect, Screen};
 
 /// More numbers than an equilibrium has lines of; the screen shows the last where that is passed.
 const MOST_NUMBERS: usize = 200;
@@ -26,8 +27,11 @@ pub(super) fn act(app: &mut App, action: Action) -> Vec<Effect> {
         }
         Action::Accept => return entry::accept(app),
         Action::Type => entry::begin(app),
-        Action::Write => entry::open(app, Purpose::Write),
-        Action::Record => entry::open(app, Purpose::Record),
+        Action::Write => entry::begin_write(app),
+        Action::Record => return record::begin(app),
+        Action::OpenCopy => record::open_copy(app),
+        Action::TakeUp => session::take_up(app),
+        Action::Complete => return entry::complete(app),
         Action::Reload => reload(app),
         Action::Closer
         | Action::Wider
@@ -41,7 +45,12 @@ pub(super) fn act(app: &mut App, action: Action) -> Vec<Effect> {
         | Action::Logarithmic(_)
         | Action::Move(_) => sketch::act(app, action),
         Action::Fine(_) | Action::Coarse(_) | Action::Undo | Action::Redo | Action::Forget => values::act(app, action),
-        Action::Other | Action::Knock(_) => {}
+        Action::Other | Action::Absent | Action::Scroll(_) if app.screen == Screen::Interactions => {
+            interactions::act(app, action);
+        }
+        Action::Other | Action::Knock(_) | Action::Scroll(_) if app.screen == Screen::Knock => knock::act(app, action),
+        Action::Other => other(app),
+        Action::Knock(_) | Action::Absent | Action::Scroll(_) => {}
     }
     Vec::new()
 }
@@ -73,11 +82,25 @@ fn stop(app: &mut App) -> Vec<Effect> {
     Vec::new()
 }
 
+/// Another kind of the same screen.
+fn other(app: &mut App) {
+    if let (Screen::SideBySide, Some(study)) = (app.screen, &mut app.study) {
+        study.beside.turn();
+    }
+}
+
 fn show(app: &mut App, screen: Screen) {
     app.notice = None;
     app.screen = screen;
+    let size = app.size;
+    // What there is may have changed since it was listed.
+    app.chooser.listing = 0;
     if let Some(study) = &mut app.study {
         study.sketch.hold = None;
+        // The same equilibrium stays selected from one screen to the other.
+        let name = study.name_of_chosen();
+        let row = ids(study, size).iter().position(|id| Some(*id) == name.as_deref());
+        study.beside.row = row.unwrap_or(study.beside.row);
         if screen == Screen::Values {
             values::show(study);
         }
@@ -106,6 +129,13 @@ fn walk(app: &mut App, step: Step) {
         (None, Screen::Values, Some(study)) => {
             let page = listed(parts_of_values(app.size, study.count()).list);
             study.parameter = stepped(study.parameter, study.model().parameters.len(), page, step);
+        }
+        (None, Screen::SideBySide, Some(study)) => {
+            let ids = ids(study, app.size);
+            let row = stepped(study.beside.row, ids.len(), page, step);
+            let id = ids.get(row).map(|id| (*id).to_owned());
+            study.beside.row = row;
+            study.choose_named(id.as_deref());
         }
         (None, _, Some(study)) => {
             let count = study.count();

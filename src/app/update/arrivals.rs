@@ -1,9 +1,11 @@
 //! What comes from outside: answers, files that were written, a model that has changed.
 
+use std::path::PathBuf;
 use std::sync::Arc;
 
 use super::acts::reload;
 use super::reread::{reread, shown};
+use super::{chooser, entry, record, session};
 use crate::app::study::{Slot, World};
 use crate::app::task::{Answer, Task};
 use crate::app::{App, Dialog, Effect, JobId, Msg, Read, Screen, Source, Study};
@@ -13,8 +15,13 @@ pub(super) fn arrive(app: &mut App, msg: Msg) -> Vec<Effect> {
     match msg {
         Msg::Answered(id, answer) => return answered(app, id, answer),
         Msg::Advanced(id, progress) => app.desk.advance(id, progress),
-        Msg::Written(Ok(path)) => app.say(format!("written to {}", path.display())),
-        Msg::Written(Err(reason)) => app.complain(reason),
+        Msg::Written(what) => record::written(app, what),
+        Msg::Completed(asked, completion) => entry::completed(app, &asked, completion),
+        Msg::Suggested(path) => app.suggestion = Some(path),
+        Msg::Listed(listing, entry) => chooser::listed(app, listing, entry),
+        Msg::AllListed(listing) => chooser::all_listed(app, listing),
+        Msg::Recalled(source, session) => session::recalled(app, &source, session),
+        Msg::Remarked(text) => app.say(text),
         Msg::Changed => reload(app),
         Msg::Struck(_) | Msg::Pasted(_) | Msg::Resized(_) | Msg::Resumed => {}
     }
@@ -49,7 +56,6 @@ fn read_model(app: &mut App, source: Source, read: Read) -> Vec<Effect> {
     let is_again = app.study.as_ref().is_some_and(|study| study.source == source);
     match read {
         Read::Ready(world) => {
-            let tables = world.original.tables.iter().map(|(name, _)| name.clone()).collect();
             // What was wrong with the file has been mended.
             if matches!(app.dialog, Some(Dialog::Message { .. })) {
                 app.dialog = None;
@@ -59,7 +65,8 @@ fn read_model(app: &mut App, source: Source, read: Read) -> Vec<Effect> {
             } else {
                 open(app, source.clone(), &world);
             }
-            return vec![Effect::Watch(source, tables)];
+            let watch = Effect::Watch(source.clone(), Arc::clone(&world));
+            return if is_again { vec![watch] } else { vec![watch, Effect::Recall(source, world)] };
         }
         Read::Wrong(sources, found) => {
             let lines = found.iter().flat_map(|one| {
@@ -83,11 +90,22 @@ fn open(app: &mut App, source: Source, world: &Arc<World>) {
     app.study = Some(Study::new(source, Arc::clone(world), shown(model, &app.only)));
     app.screen = Screen::Equilibria;
     app.notice = None;
+    app.dialog = None;
+    if let (Some(study), Some((_, scenario))) = (&mut app.study, &app.copy) {
+        let at =
+            study.slots.iter().position(|slot| slot.name() == scenario).filter(|_| is_copy(&app.copy, &study.source));
+        study.current = at.unwrap_or(0);
+    }
     let unknown: Vec<&str> =
         app.set.iter().map(|(name, _)| name.as_str()).filter(|name| !model.names.contains_key(*name)).collect();
     if !unknown.is_empty() {
         app.complain(format!("this model has no parameter {}, which was set at the start", unknown.join(", ")));
     }
+}
+
+/// Whether a model is the copy that was recorded last: it is opened for its new scenario.
+fn is_copy(copy: &Option<(PathBuf, String)>, source: &Source) -> bool {
+    copy.as_ref().is_some_and(|(path, _)| *source == Source::File(path.clone()))
 }
 
 /// The tried scenario has its equations: it takes the last slot. What was found with other values is shown until it is

@@ -46,12 +46,15 @@ fn renewed(old: &Study, world: &Arc<World>, only: &[String], tried: Tried) -> St
     study.tried = Tried { follow: was_tried, ..tried };
     if is_alike {
         study.sketch = old.sketch.clone();
+        study.interacting = old.interacting;
+        study.knock = old.knock;
     }
     if let Some((_, parameter)) = old.parameter() {
         let names = study.parameters().iter().position(|id| model.parameters[id.0].name == parameter.name);
         study.parameter = names.unwrap_or(0);
     }
     study.names = study.slots.iter().map(|slot| names_before(old, slot)).collect();
+    study.offer.clone_from(&old.offer);
     study.choose_named(old.name_of_chosen().as_deref());
     study
 }
@@ -76,8 +79,10 @@ pub(super) fn shown(model: &Model, only: &[String]) -> Vec<usize> {
 fn carried(old: &Study, model: &Model, edition: u64) -> Tried {
     let carry = |set: &TriedSet| carried_set(old.model(), model, set);
     let all = |sets: &[TriedSet]| sets.iter().filter_map(carry).collect();
-    let Some(now) = carry(&old.tried.now) else { return Tried { edition, ..Tried::default() } };
-    Tried { now, undo: all(&old.tried.undo), redo: all(&old.tried.redo), edition, follow: false }
+    let Some(now) = carry(&old.tried.now).filter(|_| old.tried.edition > 0) else { return Tried::default() };
+    let recorded = if old.tried.recorded == old.tried.edition { edition } else { 0 };
+    let (undo, redo) = (all(&old.tried.undo), all(&old.tried.redo));
+    Tried { now, undo, redo, edition, recorded, ..Tried::default() }
 }
 
 fn carried_set(from: &Model, to: &Model, set: &TriedSet) -> Option<TriedSet> {

@@ -1,5 +1,6 @@
 //! Trying values: every change makes another tried scenario, and can be taken back.
 
+use super::session;
 use crate::app::action::{Action, Step};
 use crate::app::study::TriedSet;
 use crate::app::trial::{COARSE, neat, reach, step};
@@ -84,6 +85,10 @@ pub(super) fn change(app: &mut App, to: TriedSet) {
     let Some(study) = &mut app.study else { return };
     if study.tried.now == to {
         return;
+    }
+    // What was offered and not taken up can be come back to.
+    if let Some(offered) = session::offered(study) {
+        study.tried.undo.push(offered);
     }
     let before = std::mem::replace(&mut study.tried.now, to);
     study.tried.undo.push(before);

@@ -50,8 +50,8 @@ fn change(comparison: &Comparison<'_>, identity: &Identity, scene: usize, entry:
 }
 
 fn through(comparison: &Comparison<'_>, scene: usize, entry: &Entry, fate: &Fate) -> Map<String, Value> {
-    let own = if entry.change == Change::Gained { Some(scene) } else { comparison.reference };
-    let other = if entry.change == Change::Gained { comparison.reference } else { Some(scene) };
+    let own = if entry.is_back() { Some(scene) } else { comparison.reference };
+    let other = if entry.is_back() { comparison.reference } else { Some(scene) };
     let id = |scene: Option<usize>, place: Option<usize>| {
         let (Some(scene), Some(place)) = (scene, place) else { return Value::Null };
         comparison.table.names.of(scene).get(place).map_or(Value::Null, |id| id.clone().into())

@@ -13,8 +13,8 @@
 //! - `reference`: the name of the scenario that the others are compared with; null where all failed
 //! - `matches`: one a row, `{"id", "scenarios": [{"name", "place", "change", "differences"}]}`. `place`: its place in that
 //!   scenario's `equilibria`, or null. `differences`: `{quantity: {"from", "to"}}` where both are numbers that are not the same
-//! - `change`: `{"what", "proven": false, "text"}`, `what` being `reference`, `same`, `gained`, `lost`, `in neither` or
-//!   `failed`; for those that were followed also `through` (`fold`, `zero`, `box`, `arrives`, `not followed`), `at` (share of
+//! - `change`: `{"what", "proven": false, "text"}`, `what` being `reference`, `same`, `gained`, `lost`, `other name`, `in
+//!   neither` or `failed`; for those that were followed also `through` (`fold`, `zero`, `box`, `arrives`, `not followed`), `at` (share of
 //!   the way from the reference, or null), `with` (id, or null), `species` (symbol, or null), `turns` and `kinks` (shares of the
 //!   way), `type_changed` where it is in both
 
@@ -33,8 +33,9 @@ pub use latex::latex;
 pub use markdown::markdown;
 pub use quantity::{Measured, Quantity};
 pub use text::text;
+pub use words::difference;
 
-use super::table::{Scene, Solved, Table};
+use super::table::{Form, Page, Scene, Solved, Table, pretty};
 use crate::analysis::passage::{Fate, Passage};
 use quantity::quantities;
 
@@ -86,10 +87,30 @@ pub enum Change {
     Gained,
     /// It is in the reference alone.
     Lost,
+    /// It is in one of them alone by this name; followed from the reference it has another.
+    OtherName,
     /// It is in neither.
     InNeither,
     /// Nothing could be looked for in the scenario.
     Failed,
+}
+
+impl Entry {
+    /// Whether its fate is that of one here, followed back to the reference.
+    pub fn is_back(&self) -> bool {
+        self.place.is_some() && self.change != Change::Same
+    }
+}
+
+/// A comparison in a form.
+pub fn written(comparison: &Comparison<'_>, form: Form, page: Page) -> String {
+    match form {
+        Form::Text => text(comparison, page),
+        Form::Csv => csv(comparison, page.style),
+        Form::Markdown => markdown(comparison, page),
+        Form::Json => pretty(&json(comparison), page.style),
+        Form::Latex => latex(comparison, page),
+    }
 }
 
 impl<'c> Comparison<'c> {
@@ -108,12 +129,25 @@ impl<'c> Comparison<'c> {
             entries: (0..table.scenes.len()).map(|scene| maker.entry(id, scene)).collect(),
         };
         let rows = ids.iter().map(row).collect();
-        Self { table, reference, rows, quantities }
+        Self { table, reference, quantities, rows }
     }
 
     /// What is known of the scenario at a place among those shown.
     pub fn solved(&self, scene: usize) -> Option<&'c Solved> {
         self.table.scenes.get(scene).and_then(|scene: &Scene| scene.outcome.as_ref().ok())
+    }
+
+    /// A sentence on what became of an equilibrium in the scenario at a place, where there is anything to be said.
+    pub fn sentence(&self, identity: &Identity, scene: usize) -> Option<String> {
+        words::sentence(self, identity, scene)
+    }
+
+    /// Where today's stocks lead in the scenario at a place, in a word or two; `None` where that is not known.
+    pub fn leads(&self, scene: usize) -> Option<String> {
+        let from = self.solved(scene)?.assessment.from_now.as_ref()?;
+        let scenario = self.table.scenes.get(scene)?.scenario;
+        let at = super::table::paths::Place { table: self.table, scenario, ids: self.table.names.of(scene) };
+        Some(super::table::paths::word(at, &from.reaches))
     }
 
     /// The entry of the reference.
@@ -156,6 +190,10 @@ impl Maker<'_, '_> {
             Change::Gained => passage.backward.get(place?).cloned(),
             _ => None,
         });
+        let change = match (change, &fate) {
+            (Change::Lost | Change::Gained, Some(Fate::Arrives { .. })) => Change::OtherName,
+            (change, _) => change,
+        };
         let value = |quantity: &Quantity| quantity.of(self.table, scene, place?);
         let kinds = [self.reference.map(|reference| (reference, base)), Some((scene, place))];
         let [first, second] = kinds.map(|at| at.and_then(|(scene, place)| self.kind(scene, place?)));

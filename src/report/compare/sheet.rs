@@ -33,7 +33,9 @@ fn changed(entry: &Entry) -> Cell {
     match entry.change {
         Change::Reference | Change::Same => Cell::new(word(entry.change)),
         Change::InNeither => Cell::new("-"),
-        Change::Gained | Change::Lost | Change::Failed => Cell::inked(word(entry.change), Ink::Undecided),
+        Change::Gained | Change::Lost | Change::OtherName | Change::Failed => {
+            Cell::inked(word(entry.change), Ink::Undecided)
+        }
     }
 }
 

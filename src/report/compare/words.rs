@@ -9,7 +9,7 @@ use crate::analysis::passage::Fate;
 const ROUNDING: f64 = 1e-12;
 
 /// How a number differs from that of the reference: a sign, and the share where both are positive, else the amount.
-pub(super) fn difference(from: f64, to: f64) -> String {
+pub fn difference(from: f64, to: f64) -> String {
     if (to - from).abs() <= ROUNDING * from.abs().max(to.abs()) {
         return "=".to_owned();
     }
@@ -32,6 +32,7 @@ pub(super) fn word(change: Change) -> &'static str {
         Change::Same => "same",
         Change::Gained => "gained",
         Change::Lost => "lost",
+        Change::OtherName => "other name",
         Change::InNeither => "in neither",
         Change::Failed => "failed",
     }
@@ -44,7 +45,7 @@ pub(super) fn sentence(comparison: &Comparison<'_>, identity: &Identity, scene: 
         (Change::Reference | Change::InNeither | Change::Failed, _) => return None,
         (Change::Same, fate) => same(comparison, entry, fate.as_ref(), scene)?,
         (change, None) => format!("{}; it was not followed", word(change)),
-        (change, Some(fate)) => format!("{}: {}", word(change), through(comparison, change, fate, scene)),
+        (change, Some(fate)) => format!("{}: {}", word(change), through(comparison, entry.is_back(), fate, scene)),
     };
     let numerical = proof(false);
     Some(format!("{} in {}: {said} ({numerical}).", identity.id, name(comparison.table, scene)))
@@ -58,14 +59,14 @@ fn same(comparison: &Comparison<'_>, entry: &Entry, fate: Option<&Fate>, scene: 
     }
     match fate {
         Some(Fate::Arrives { at, turns, .. }) if Some(*at) == entry.place => {
-            if !turns.is_empty() {
-                let places: Vec<String> = turns.iter().map(|&at| percent(at)).collect();
+            let places: Vec<String> = turns.iter().map(|&at| percent(at)).collect();
+            if !places.is_empty() {
                 parts.push(format!("its branch turns back on the way, in folds at {}", places.join(" and ")));
             }
         }
         Some(fate) => {
             parts.push(format!("followed from the scenario before; directly from the reference, {}", {
-                through(comparison, Change::Lost, fate, scene)
+                through(comparison, false, fate, scene)
             }));
         }
         None => {}
@@ -73,34 +74,35 @@ fn same(comparison: &Comparison<'_>, entry: &Entry, fate: Option<&Fate>, scene: 
     if parts.is_empty() { None } else { Some(parts.join("; ")) }
 }
 
-/// Through what it was lost or gained. Fates of the lost name equilibria of the reference, of the gained those of the scenario.
-fn through(comparison: &Comparison<'_>, change: Change, fate: &Fate, scene: usize) -> String {
-    let [own, other] = match (change, comparison.reference) {
-        (Change::Gained, Some(reference)) => [scene, reference],
-        (_, Some(reference)) => [reference, scene],
-        (_, None) => [scene, scene],
-    };
+/// Through what it was lost or gained. A fate names equilibria of the end that it was followed from:
+/// of the scenario where it was followed back, else of the reference.
+fn through(comparison: &Comparison<'_>, is_back: bool, fate: &Fate, scene: usize) -> String {
+    let reference = comparison.reference.unwrap_or(scene);
+    let [own, other] = if is_back { [scene, reference] } else { [reference, scene] };
     let id = |scene: usize, place: usize| comparison.table.names.of(scene).get(place).cloned().unwrap_or_default();
     let base = comparison.reference.map_or("", |reference| name(comparison.table, reference));
     let from = format!("from {base}");
     let at = |share: f64| format!("at {} of the way {from}", percent(share));
-    let meets = if change == Change::Gained { "parts from" } else { "meets" };
+    let meets = if is_back { "parts from" } else { "meets" };
     match fate {
         Fate::Fold { at: share, with: Some(with) } => format!("{meets} {} in a fold {}", id(own, *with), at(*share)),
         Fate::Fold { at: share, with: None } => format!("its branch turns back in a fold {}", at(*share)),
         Fate::Zero { at: share, species, with } => {
             let symbol = comparison.table.symbol(species.0).unwrap_or("");
-            let reaches = if change == Change::Gained { "comes up from 0" } else { "reaches 0" };
+            let reaches = if is_back { "comes up from 0" } else { "reaches 0" };
             let with = with.map_or_else(String::new, |with| format!(", where it {meets} {}", id(own, with)));
             format!("{symbol} {reaches} {}{with}", at(*share))
         }
         Fate::LeavesBox { at: share, species } => {
             let symbol = comparison.table.symbol(species.0).unwrap_or("");
-            let passes = if change == Change::Gained { "comes into" } else { "leaves" };
+            let passes = if is_back { "comes into" } else { "leaves" };
             format!("{symbol} {passes} the search box {}", at(*share))
         }
         Fate::Arrives { at: place, .. } => {
-            format!("followed directly it is {}, another by way of the scenarios between", id(other, *place))
+            format!(
+                "followed directly between here and {base} it is {}, which has its name by way of other scenarios",
+                id(other, *place)
+            )
         }
         Fate::NotFollowed(reason) => format!("not followed, {}", why(*reason, &from)),
     }

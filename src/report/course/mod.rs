@@ -13,6 +13,7 @@ pub use bands::{bands, drawing, signs};
 pub use csv::{csv, headings, rows};
 pub use words::sentences;
 
+use crate::analysis::equilibria::Equilibrium;
 use crate::analysis::linearise::Linearisation;
 use crate::analysis::paths::{Ended, Path};
 use crate::model::SpeciesId;
@@ -136,6 +137,45 @@ impl Course {
             step,
         }
     }
+}
+
+/// The equilibrium of a list that a course is within 10 % of at its end, by its place; the nearest where there are several.
+/// Of a species that is absent there, 10 % of its highest on the way.
+pub fn end(course: &Course, list: &[Equilibrium]) -> Option<usize> {
+    let last = course.states.last()?;
+    let highest = |i: usize| course.states.iter().filter_map(|state| state.get(i)).fold(0.0, |a: f64, x| a.max(*x));
+    let highest: Vec<f64> = (0..last.len()).map(highest).collect();
+    let off = |place: usize| {
+        let there = &list[place].state;
+        let sizes: Vec<f64> = there.iter().zip(&highest).map(|(&x, &high)| if x > 0.0 { x } else { high }).collect();
+        deviation(there, &sizes, last)
+    };
+    let all = (0..list.len()).map(|place| (place, off(place))).filter(|(_, off)| *off <= TENTH);
+    all.min_by(|a, b| a.1.total_cmp(&b.1)).map(|(place, _)| place)
+}
+
+/// From when on a path is within 1 % of one of these equilibria for good; `None` where it is near none at its end.
+pub fn arrival(path: &Path, list: &[Equilibrium], is_map: bool) -> Option<f64> {
+    let last = path.states.last()?;
+    let there = |one: &Equilibrium| {
+        let sizes = sizes(path, &one.state);
+        let off = |state: &[f64]| deviation(&one.state, &sizes, state);
+        (off(last) <= HUNDREDTH).then(|| entry(path, is_map, &|state| off(state) <= HUNDREDTH))
+    };
+    list.iter().filter_map(there).min_by(f64::total_cmp)
+}
+
+/// A path until a little after a time; whole where that is its start.
+#[must_use]
+pub fn until_after(mut path: Path, time: f64) -> Path {
+    let until = AFTERWARDS * time;
+    if until > 0.0 {
+        let kept = path.times.iter().take_while(|&&time| time <= until).count() + 1;
+        path.times.truncate(kept);
+        path.states.truncate(kept);
+        path.lost.retain(|(_, when)| *when <= path.times.last().copied().unwrap_or(0.0));
+    }
+    path
 }
 
 /// By what a deviation of each species is measured.

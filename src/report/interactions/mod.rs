@@ -2,18 +2,21 @@
 //! and number.
 //!
 //! [`interactions`] takes them from what was said of the equilibrium, [`drawing`] shows a part of the table, [`text()`] and
-//! [`csv`] save all of it. A sign is a plus, a minus, a 0 or a question mark, never a colour; whether it is proved is told
+//! [`csv`] save all of it, [`sentences`] say what is telling in it. A sign is a plus, a minus, a 0 or a question mark, never a colour; whether it is proved is told
 //! apart, see [`Sign`]. `table` lays out.
 
 mod csv;
 mod table;
+mod words;
 
 pub use csv::{csv, headings, rows};
 pub use table::{drawing, signs, text, visible};
+pub use words::sentences;
 
 use crate::analysis::assess::Assessed;
 use crate::analysis::equilibria::Equilibrium;
 use crate::analysis::linearise::Linearisation;
+use crate::analysis::measures::NetEffects;
 use crate::num::interval::Interval;
 
 /// Which effects.
@@ -45,7 +48,7 @@ pub enum Sign {
     Negative,
     /// None at all.
     Zero,
-    /// What holds the true number has both signs.
+    /// What holds the true number has both signs; of a net effect, it is no more than what rounding can do.
     Undecided,
 }
 
@@ -107,14 +110,35 @@ pub fn interactions(
     }
     let species: Vec<usize> = (0..n).filter(|&i| who == Who::All || equilibrium.has(i)).collect();
     let pairs = species.iter().flat_map(|&i| species.iter().map(move |&j| i * n + j));
+    let floor = if effects == Effects::Net { net.map_or(0.0, |net| rounding(net, &equilibrium.state)) } else { 0.0 };
+    let noise = |k: usize| numbers[k] != 0.0 && share(numbers[k], &equilibrium.state, k) < floor;
     let bounds = if effects == Effects::Direct && equilibrium.proven { bounds(linear) } else { &[] };
     Ok(Interactions {
         effects,
         present: species.iter().map(|&i| equilibrium.has(i)).collect(),
-        entries: pairs.map(|k| effect(numbers[k], bounds.get(k))).collect(),
+        entries: pairs
+            .map(|k| match noise(k) {
+                true => Effect { number: numbers[k], sign: Sign::Undecided, proved: false },
+                false => effect(numbers[k], bounds.get(k)),
+            })
+            .collect(),
         nearly_singular: effects == Effects::Net && net.is_some_and(|net| net.nearly_singular),
         species,
     })
+}
+
+/// What rounding can do to a net effect, as a share of the abundances: the condition of what was inverted, times the rounding
+/// of one number, times the largest effect.
+fn rounding(net: &NetEffects, state: &[f64]) -> f64 {
+    let shares = net.matrix.iter().enumerate().map(|(k, &number)| share(number, state, k));
+    net.condition * f64::EPSILON * shares.filter(|share| share.is_finite()).fold(0.0, f64::max)
+}
+
+/// The size of an entry of a matrix over all species in shares of the abundances, which are 1 for those that are absent.
+fn share(number: f64, state: &[f64], k: usize) -> f64 {
+    let n = state.len();
+    let size = |i: usize| if state[i] > 0.0 { state[i] } else { 1.0 };
+    number.abs() * (size(k % n) / size(k / n))
 }
 
 /// What holds the Jacobian, where anything does.
@@ -126,7 +150,7 @@ fn effect(number: f64, bounds: Option<&Interval>) -> Effect {
     let by_number = match number {
         x if x > 0.0 => Sign::Positive,
         x if x < 0.0 => Sign::Negative,
-        x if x == 0.0 => Sign::Zero,
+        0.0 => Sign::Zero,
         _ => Sign::Undecided,
     };
     let Some(side) = bounds else { return Effect { number, sign: by_number, proved: false } };

@@ -37,7 +37,7 @@ pub fn drawing(table: &Interactions, model: &Model, from: [usize; 2], size: Size
             grid.label(column, row, fitted(text, size.columns - column, style), ink);
         }
     };
-    put(&mut grid, 0, 0, &title(table, model), Ink::Strong);
+    put(&mut grid, 0, 0, &title(table, model, size.columns), Ink::Strong);
     for (place, column) in part.columns.clone().enumerate() {
         let text = fitted(&symbol(table, model, column), COLUMN - 1, style);
         let at = part.head + (place + 1) * COLUMN - text.width();
@@ -65,14 +65,16 @@ pub fn text(table: &Interactions, model: &Model, style: Style) -> String {
     let n = table.species.len();
     let columns = head_width(table, model) + n * COLUMN;
     // Wide enough for the title as well.
-    let size = Size { columns: columns.max(title(table, model).width()).max(80), rows: n + ABOVE + BELOW };
-    drawing(table, model, [0, 0], size, style).lines(false).iter().map(|line| format!("{line}\n")).collect()
+    let size = Size { columns: columns.max(title(table, model, usize::MAX).width()).max(80), rows: n + ABOVE + BELOW };
+    let lines = drawing(table, model, [0, 0], size, style).lines(false).join("\n");
+    format!("{}\n", lines.trim_end())
 }
 
-/// The signs of the table, each with its meaning in a word or two.
-pub fn signs(table: &Interactions) -> Vec<(String, String)> {
-    let has = |sign: Sign| table.entries.iter().any(|effect| effect.sign == sign);
-    let is_mixed = table.effects == Effects::Direct && table.entries.iter().any(is_bracketed);
+/// The signs of tables that are shown together, each with its meaning in a word or two.
+pub fn signs(tables: &[&Interactions]) -> Vec<(String, String)> {
+    let has = |sign: Sign| tables.iter().flat_map(|table| &table.entries).any(|effect| effect.sign == sign);
+    let mixed = |table: &&&Interactions| table.effects == Effects::Direct && table.entries.iter().any(is_bracketed);
+    let is_mixed = tables.iter().find(mixed).is_some();
     let all = [
         (has(Sign::Positive), "+", "more"),
         (has(Sign::Negative), "-", "less"),
@@ -125,23 +127,28 @@ fn notes(table: &Interactions, part: &Part) -> Vec<(String, Ink)> {
     notes
 }
 
-/// What the table is, how to read it, and how sure it is.
-fn title(table: &Interactions, model: &Model) -> String {
+/// What the table is, how to read it, and how sure it is: at length where there is room.
+fn title(table: &Interactions, model: &Model, room: usize) -> String {
     let unit = &model.time_unit.value;
-    match (table.effects, &model.time) {
-        (Effects::Direct, TimeKind::Continuous) => {
-            format!("Direct effects: on the growth of the row, per {unit}, of one more of the column")
-        }
-        (Effects::Direct, TimeKind::Discrete { .. }) => {
-            "Direct effects: on the next state of the row, of one more of the column".to_owned()
-        }
-        (Effects::Net, TimeKind::Continuous) => {
-            format!("Net effects (numerical): lasting answer of the row to one more per {unit} of the column")
-        }
-        (Effects::Net, TimeKind::Discrete { .. }) => {
-            "Net effects (numerical): lasting answer of the row to one more at each step of the column".to_owned()
-        }
-    }
+    let [long, short] = match (table.effects, &model.time) {
+        (Effects::Direct, TimeKind::Continuous) => [
+            format!("Direct effects: on the growth of the row, per {unit}, of one more of the column"),
+            format!("Direct: on the row's growth per {unit}, of one more of column"),
+        ],
+        (Effects::Direct, TimeKind::Discrete { .. }) => [
+            "Direct effects: on the next state of the row, of one more of the column".to_owned(),
+            "Direct: on the row's next state, of one more of column".to_owned(),
+        ],
+        (Effects::Net, TimeKind::Continuous) => [
+            format!("Net effects (numerical): lasting answer of the row to one more per {unit} of the column"),
+            format!("Net (numerical): row's lasting answer to +1 per {unit} of column"),
+        ],
+        (Effects::Net, TimeKind::Discrete { .. }) => [
+            "Net effects (numerical): lasting answer of the row to one more at each step of the column".to_owned(),
+            "Net (numerical): row's lasting answer to +1 a step of column".to_owned(),
+        ],
+    };
+    if long.width() <= room { long } else { short }
 }
 
 fn symbol(table: &Interactions, model: &Model, place: usize) -> String {

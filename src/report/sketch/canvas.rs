@@ -6,7 +6,7 @@
 use super::signs::{Growth, Mark, flow, spacing};
 use super::trace::Trace;
 use super::{Extras, Picture, Style, View};
-use crate::analysis::field::{Frame, Octant, Portrait, Profile, Straight, nearest};
+use crate::analysis::field::{Frame, Octant, Portrait, Profile, Sight, Straight, nearest};
 
 /// A straight path is drawn over this share of the frame's smaller side to either side, in widths of a column.
 const SHARE: f64 = 0.15;
@@ -89,10 +89,10 @@ fn plane(canvas: &mut Canvas, view: &View<'_>, portrait: &Portrait) {
 
 fn flow_in_plane(canvas: &mut Canvas, portrait: &Portrait, style: Style) {
     let frame = &portrait.frame;
-    let seen = Seen::new(frame);
+    let sight = Sight::new(frame);
     directions(canvas, style, 0..frame.rows, |column, row| {
         let cell = row * frame.columns + column;
-        Octant::of(seen.at(column, row, [portrait.motion.x[cell], portrait.motion.y[cell]]))
+        Octant::of(sight.at(column, row, [portrait.motion.x[cell], portrait.motion.y[cell]]))
     });
 }
 
@@ -219,6 +219,10 @@ fn paths(canvas: &mut Canvas, view: &View<'_>, extras: &Extras<'_>, frame: &Fram
         let Some(path) = path else { continue };
         let trace = Trace::new(view, frame, path);
         trace.cells.iter().for_each(|&cell| canvas.put(cell, mark));
+        // Of two paths only the one forwards has moments: digits on both would not say which they belong to.
+        if mark == Mark::Backwards && extras.forwards.is_some() {
+            continue;
+        }
         for (number, cell) in trace.moments {
             if !matches!(canvas.at(cell[0], cell[1]), Mark::Moment(_)) {
                 canvas.put(cell, Mark::Moment(number));
@@ -282,23 +286,5 @@ fn name(canvas: &mut Canvas, [column, row]: [usize; 2], letters: &[Mark]) {
     let Some(&[start, row]) = places.iter().find(|place| is_quiet(place)).or(places.first()) else { return };
     for (place, &letter) in letters.iter().enumerate() {
         canvas.put([start + place, row], letter);
-    }
-}
-
-/// What velocities in the middle of cells look like: the stretch of an axis depends on the place along that axis alone.
-struct Seen {
-    across: Vec<f64>,
-    up: Vec<f64>,
-}
-
-impl Seen {
-    fn new(frame: &Frame) -> Self {
-        let across = (0..frame.columns).map(|c| frame.stretch([frame.x(c as f64), frame.window.y[0]])[0]);
-        let up = (0..frame.rows).map(|r| frame.stretch([frame.window.x[0], frame.y(r as f64)])[1]);
-        Self { across: across.collect(), up: up.collect() }
-    }
-
-    fn at(&self, column: usize, row: usize, [x, y]: [f64; 2]) -> [f64; 2] {
-        [x * self.across[column], y * self.up[row]]
     }
 }

@@ -1,6 +1,6 @@
 //! Where a path leads, and where one came from, in one sentence each. Numerical, and said to be.
 
-use super::legend::symbol;
+use super::legend::{at, symbol};
 use super::{Style, View};
 use crate::analysis::field::Window;
 use crate::analysis::paths::{Ended, Path};
@@ -25,7 +25,7 @@ pub fn ends(view: &View<'_>, path: &Path, style: Style) -> String {
                 time => format!("after {} {unit} within 1 % of {id}{leaves}", human(time)),
             }
         }
-        None => still(path, &unit),
+        None => rest(view, path, &unit).unwrap_or_else(|| still(path, &unit)),
     };
     let mut said: Vec<String> = losses(view, path, &unit);
     // A sentence that begins with a symbol keeps it as it is.
@@ -45,7 +45,7 @@ pub fn came_from(view: &View<'_>, window: &Window, path: &Path, style: Style) ->
     let said = match (outside, path.ended) {
         (Some(0), _) => "starts beyond the drawing".to_owned(),
         (Some(knot), _) => {
-            let time = path.times.get(knot).copied().unwrap_or(0.0);
+            let time = crossing(path, knot, &is_inside);
             format!("came from beyond the drawing {} {unit} ago", human(time.abs()))
         }
         (None, Ended::NoPast) if view.step().is_some() => "a map cannot be followed backwards".to_owned(),
@@ -62,6 +62,19 @@ pub fn came_from(view: &View<'_>, window: &Window, path: &Path, style: Style) ->
         },
     };
     sentence(&capital(&said), style)
+}
+
+/// When a path that is inside up to the state before `knot`, and outside at it, crosses over.
+fn crossing(path: &Path, knot: usize, is_inside: &dyn Fn(&Vec<f64>) -> bool) -> f64 {
+    let (Some(&before), Some(&after)) = (path.times.get(knot.saturating_sub(1)), path.times.get(knot)) else {
+        return path.until();
+    };
+    let (mut inside, mut outside) = (before, after);
+    for _ in 0..HALVINGS {
+        let middle = f64::midpoint(inside, outside);
+        if is_inside(&path.at(middle, false)) { inside = middle } else { outside = middle }
+    }
+    outside
 }
 
 fn holds_x(window: &Window, [x, _]: [f64; 2]) -> bool {
@@ -101,6 +114,28 @@ fn stopped(path: &Path) -> Option<&'static str> {
     }
 }
 
+/// The last part of a path, in which one that is at rest does not move; a share of its time.
+const LAST: f64 = 0.1;
+
+/// A path that came to rest where the list has no equilibrium, as where a quota goes on being taken of nobody.
+fn rest(view: &View<'_>, path: &Path, unit: &str) -> Option<String> {
+    let is_map = view.step().is_some();
+    let end = path.states.last().filter(|_| stopped(path).is_none())?;
+    let highest = highest(path, end.len());
+    let is_near = |state: &[f64], share: f64| distance(end, &highest, state) <= share;
+    // Ten times nearer than near, lest a slow path be taken for one at rest.
+    is_near(&path.at((1.0 - LAST) * path.until(), is_map), NEAR / 10.0).then(|| {
+        let time = entry(path, is_map, &|state| is_near(state, NEAR));
+        let place = at(view, view.slice.project(end));
+        format!("after {} {unit} within 1 % of {place}, which is no equilibrium of the list", human(time))
+    })
+}
+
+fn highest(path: &Path, species: usize) -> Vec<f64> {
+    let all = |i: usize| path.states.iter().filter_map(move |state| state.get(i));
+    (0..species).map(|i| all(i).fold(0.0, |high: f64, x| high.max(*x))).collect()
+}
+
 fn still(path: &Path, unit: &str) -> String {
     let after = human(path.until());
     match stopped(path) {
@@ -114,9 +149,7 @@ fn still(path: &Path, unit: &str) -> String {
 /// Near is within 1 % of the abundance of every species, for one that is absent there within 1 % of its highest on the way.
 pub(in crate::report) fn arrival(view: &View<'_>, path: &Path) -> Option<(usize, f64)> {
     let end = path.states.last()?;
-    let highest: Vec<f64> = (0..end.len())
-        .map(|i| path.states.iter().filter_map(|state| state.get(i)).fold(0.0, |high: f64, x| high.max(*x)))
-        .collect();
+    let highest = highest(path, end.len());
     let list = &view.solved.equilibria.list;
     let off = |index: usize, state: &[f64]| distance(&list[index].state, &highest, state);
     let near = (0..list.len()).filter(|&index| off(index, end) <= NEAR);

@@ -102,14 +102,9 @@ fn moments(
 ) -> Option<(String, String)> {
     canvas.marks().find(|mark| matches!(mark, Mark::Moment(_)))?;
     let unit = clean(&view.model.time_unit.value, style);
-    let apart = |path| Some(Trace::new(view, picture.frame(), path?).every).filter(|every| *every > 0.0);
-    let number = |x: f64| if (1.0..1e6).contains(&x) { format!("{x}") } else { human(x) };
-    let text = match (apart(extras.forwards), apart(extras.backwards)) {
-        (Some(a), Some(b)) if a != b => format!("every {} {unit}, past every {}", number(a), number(b)),
-        (Some(every), _) | (None, Some(every)) => format!("every {} {unit}", number(every)),
-        (None, None) => return None,
-    };
-    Some(("1 2 3".to_owned(), text))
+    let every = Trace::new(view, picture.frame(), extras.forwards.or(extras.backwards)?).every;
+    let number = if (1e-4..1e6).contains(&every) { format!("{every}") } else { human(every) };
+    Some(("1 2 3".to_owned(), format!("every {number} {unit}")))
 }
 
 fn today(view: &View<'_>) -> String {

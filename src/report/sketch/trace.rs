@@ -52,8 +52,11 @@ impl Trace {
 fn every(view: &View<'_>, frame: &Frame, path: &Path) -> f64 {
     let place = |state: &Vec<f64>| view.slice.project(state);
     let Some(end) = path.states.last().map(place) else { return 0.0 };
-    // A path that leaves for 0 of a logarithmic axis never arrives there.
-    let is_away = |state: &Vec<f64>| !(frame.apart(place(state), end) <= ARRIVED);
+    // A path that leaves for 0 of a logarithmic axis never arrives there: how far it is from there is no number.
+    let is_away = |state: &Vec<f64>| {
+        let apart = frame.apart(place(state), end);
+        apart.is_nan() || apart > ARRIVED
+    };
     let Some(last) = path.states.iter().rposition(is_away) else { return 0.0 };
     let Some(&arrived) = path.times.get(last + 1).or(path.times.last()) else { return 0.0 };
     let unit = view.step().unwrap_or(1.0);

@@ -110,6 +110,11 @@ impl<'c> Case<'c> {
         .unwrap_or_default()
     }
 
+    /// Its sign, name and type, and how sure each is: `●~ E5, stable spiral, proved`; empty where there is none.
+    pub fn label(&self, place: usize, ascii: bool) -> String {
+        self.with(place, |row| label(row, ascii)).unwrap_or_default()
+    }
+
     /// Where today's stocks lead, and what the search came to.
     pub fn overall(&self) -> String {
         words::verdict(&self.solved.equilibria).1
@@ -146,6 +151,22 @@ fn kind(row: &Row<'_>) -> Option<String> {
     let linear = row.linear()?;
     let word = kinds::of(linear.kind).word;
     Some(format!("{}: {word}, {}.", row.id(), words::proof(linear.kind_proven)))
+}
+
+fn label(row: &Row<'_>, ascii: bool) -> String {
+    let look = row.linear().map_or(kinds::UNKNOWN, |linear| kinds::of(linear.kind));
+    let glyph = if ascii { look.ascii } else { look.glyph };
+    let winds = if look.spirals { String::from(kinds::SPIRALS) } else { String::new() };
+    let what = match (row.linear(), row.equilibrium.proven) {
+        (None, proven) => format!("{}; {}", words::proof(proven), row.why().unwrap_or("there is no linear part")),
+        (Some(linear), false) => format!("{}, {}", kinds::of(linear.kind).word, words::proof(false)),
+        (Some(linear), true) if linear.kind_proven => {
+            format!("{}, {}", kinds::of(linear.kind).word, words::proof(true))
+        }
+        (Some(linear), true) => format!("proved, type numerical: {}", kinds::of(linear.kind).word),
+    };
+    let name = if row.id().is_empty() { String::new() } else { format!(" {},", row.id()) };
+    format!("{glyph}{winds}{name} {what}")
 }
 
 /// Who is there, and how many.

@@ -7,8 +7,8 @@
 //! not by words, in every format; every format carries what is needed to make the table again, and the caution.
 //!
 //! `identity` names equilibria, `number` rounds, `words` and `scene` have what all formats say, `paths` says where paths
-//! go, `provenance` what the table is of, `layout` makes lines, `guide` explains the columns, `glossary` those shown, `facts`
-//! has one equilibrium for a screen.
+//! go, `provenance` what the table is of, `command` how to make it again, `form` which formats there are, `layout` makes
+//! lines, `guide` explains the columns, `glossary` those shown, `facts` has one equilibrium for a screen.
 //!
 //! The JSON has the contract's keys in the contract's order, and some of its own after them:
 //!
@@ -20,9 +20,11 @@
 //! - at the end: `run`, `{"command", "set": {name: number}, "budget": {"seconds", "boxes"}, "interrupted"}`; `caution`
 
 pub(in crate::report) mod columns;
+mod command;
 pub(in crate::report) mod csv;
 mod data;
 mod facts;
+mod form;
 mod glossary;
 mod guide;
 mod identity;
@@ -39,10 +41,12 @@ pub(in crate::report) mod text;
 pub(in crate::report) mod words;
 
 pub use columns::{COLUMNS, Column, Shown, Unit, columns};
+pub use command::Command;
 pub use csv::csv;
 pub(super) use csv::line;
 pub use data::json;
 pub use facts::{Case, Fact};
+pub use form::{FORMS, Form, pretty, written};
 pub use guide::guide;
 pub use identity::Names;
 pub(in crate::report) use identity::{percent, why};
@@ -50,9 +54,8 @@ pub use latex::latex;
 pub use markdown::markdown;
 pub use number::{bound, human, human_above, human_below};
 pub use selection::{Selection, UnknownColumn};
-pub(super) use text::clean;
-pub use text::{Page, failed, text};
-pub(super) use words::CAUTION;
+pub use text::{Page, clean, failed, text};
+pub use words::CAUTION;
 
 pub use super::check::Style;
 
@@ -100,6 +103,14 @@ pub struct Limits {
     pub seconds: f64,
     /// Boxes on each face.
     pub boxes: usize,
+}
+
+impl Limits {
+    /// Boxes on one face, beyond which the search goes on to the next. A face of a model that can be settled at all takes
+    /// tens to thousands.
+    pub const BOXES: usize = 50_000;
+    /// Seconds that a scenario may take where nothing is said.
+    pub const SECONDS: f64 = 10.0;
 }
 
 /// One scenario, and what came of it.

@@ -44,7 +44,7 @@ impl Page {
 }
 
 /// A text from a file, harmless, and in ASCII where asked for.
-pub(in crate::report) fn clean(text: &str, style: Style) -> String {
+pub fn clean(text: &str, style: Style) -> String {
     let text = cleanse(text);
     if style == Style::Unicode || text.is_ascii() {
         return text.into_owned();

@@ -10,7 +10,7 @@ use super::number::human;
 use super::{Table, glossary};
 
 /// What every table ends with.
-pub(in crate::report) const CAUTION: &str = "These are local results about a model, no better than its equations and its \
+pub const CAUTION: &str = "These are local results about a model, no better than its equations and its \
      figures. Limits on catch, bag or control are set by the responsible authority, under local law and in licensed \
      practice.";
 

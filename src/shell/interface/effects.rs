@@ -1,19 +1,40 @@
 //! Does what the state asks for, outside.
+//!
+//! Tasks go to `labour`; errands with files to a thread of their own, one after another, so that no disk holds up a key.
+//! What was tried is kept a second after it changed, and at the end whatever the end is: dropping [`Outside`] waits for it.
+
+use std::sync::mpsc::{Receiver, RecvTimeoutError, Sender, channel};
+use std::thread::{Builder, JoinHandle};
+use std::time::{Duration, Instant};
 
 use super::labour::Labour;
 use super::{Event, Events};
-use crate::app::{Effect, JobId, Msg};
-use crate::shell::files::write_whole;
+use crate::app::{Effect, JobId, Msg, Source};
+use crate::shell::errands::{Errands, file};
+use crate::shell::memory::Memory;
+use crate::shell::watch::{Seen, Watch};
+
+/// How long what was tried may change before it is kept.
+const PATIENCE: Duration = Duration::from_secs(1);
 
 /// All that is outside.
 pub(super) struct Outside {
     labour: Labour,
     events: Events,
+    memory: Memory,
+    /// Gone at the end: the thread then does what is left and ends.
+    errands: Option<Sender<Effect>>,
+    thread: Option<JoinHandle<()>>,
+    watch: Option<Watch>,
 }
 
 impl Outside {
-    pub(super) fn new(labour: Labour, events: Events) -> Self {
-        Self { labour, events }
+    pub(super) fn new(labour: Labour, events: Events, memory: Memory) -> Self {
+        let (errands, orders) = channel();
+        let (answers, own) = (events.clone(), memory.clone());
+        let work = move || run_errands(&orders, Errands::new(own), &answers);
+        let thread = Builder::new().name("errands".to_owned()).spawn(work).ok();
+        Self { labour, events, memory, errands: Some(errands), thread, watch: None }
     }
 
     pub(super) fn awaits_quick(&self) -> bool {
@@ -28,13 +49,102 @@ impl Outside {
         match effect {
             Effect::Ask(id, task) => self.labour.ask(id, task),
             Effect::Stop(id) => self.labour.stop(id),
-            Effect::Write { path, text, replace } => {
-                let written = write_whole(&path, &text, replace).map(|()| path).map_err(|error| format!("{error:#}"));
-                let _ = self.events.send(Event::Msg(Msg::Written(written)));
-            }
+            Effect::Watch(source, world) => self.watch(&source, &Seen::from(&world.original)),
+            Effect::List(listing, given) => self.list(listing, given),
             // The loop does these itself.
-            Effect::Redraw | Effect::Suspend | Effect::Leave => {}
-            Effect::Watch(..) | Effect::Keep(..) => {}
+            Effect::Redraw | Effect::Suspend | Effect::Leave | Effect::WriteScreen { .. } => {}
+            errand => {
+                if let Some(errands) = &self.errands {
+                    let _ = errands.send(errand);
+                }
+            }
         }
     }
+
+    fn watch(&mut self, source: &Source, seen: &Seen) {
+        // The old watch ends before the new one begins, for it may be on the same folder.
+        self.watch = None;
+        let Some(path) = file(source) else { return };
+        let events = self.events.clone();
+        let watch = Watch::start(&path, seen, move || {
+            let _ = events.send(Event::Msg(Msg::Changed));
+        });
+        if let Some(remark) = watch.remark() {
+            let _ = self.events.send(Event::Msg(Msg::Remarked(remark.to_owned())));
+        }
+        self.watch = Some(watch);
+    }
+
+    fn list(&self, listing: u64, given: Vec<std::path::PathBuf>) {
+        let (events, memory) = (self.events.clone(), self.memory.clone());
+        let work = move || {
+            let send = |msg| {
+                let _ = events.send(Event::Msg(msg));
+            };
+            Errands::list(&memory, &given, &mut |entry| send(Msg::Listed(listing, entry)));
+            send(Msg::AllListed(listing));
+        };
+        if Builder::new().name("list".to_owned()).spawn(work).is_err() {
+            let _ = self.events.send(Event::Msg(Msg::AllListed(listing)));
+        }
+    }
+}
+
+impl Drop for Outside {
+    fn drop(&mut self) {
+        self.errands = None;
+        if let Some(thread) = self.thread.take() {
+            let _ = thread.join();
+        }
+    }
+}
+
+/// What is to be kept, and until when it may wait.
+type Kept = Option<(Effect, Instant)>;
+
+fn run_errands(orders: &Receiver<Effect>, mut errands: Errands, events: &Events) {
+    let mut kept: Kept = None;
+    loop {
+        let wait = kept.as_ref().map(|(_, due)| due.saturating_duration_since(Instant::now()));
+        let order = match wait {
+            Some(wait) => orders.recv_timeout(wait),
+            None => orders.recv().map_err(|_| RecvTimeoutError::Disconnected),
+        };
+        match order {
+            Ok(keep @ Effect::Keep(..)) => put_off(keep, &mut kept, &mut errands),
+            Ok(errand) => {
+                if let Some((keep, _)) = kept.take() {
+                    errands.run(keep);
+                }
+                if let Some(answer) = errands.run(errand) {
+                    let _ = events.send(Event::Msg(answer));
+                }
+            }
+            Err(reason) => {
+                if let Some((keep, _)) = kept.take() {
+                    errands.run(keep);
+                }
+                if reason == RecvTimeoutError::Disconnected {
+                    return;
+                }
+            }
+        }
+    }
+}
+
+/// The later takes the place of the earlier where both are of the same model; a change that goes on is kept all the same.
+fn put_off(keep: Effect, kept: &mut Kept, errands: &mut Errands) {
+    let is_same = |old: &Effect| match (old, &keep) {
+        (Effect::Keep(old, _), Effect::Keep(new, _)) => old == new,
+        _ => false,
+    };
+    let due = match kept.take() {
+        Some((old, due)) if is_same(&old) => due,
+        Some((old, _)) => {
+            errands.run(old);
+            Instant::now() + PATIENCE
+        }
+        None => Instant::now() + PATIENCE,
+    };
+    *kept = Some((keep, due));
 }

@@ -49,8 +49,8 @@ impl Labour {
         let stop = Arc::new(AtomicBool::new(false));
         let to = match task {
             Task::Read(..) | Task::Solve { .. } => &self.slow,
-            Task::Name { .. } => &self.between,
-            Task::Prepare(..) | Task::Paint(_) | Task::Follow { .. } => &self.quick,
+            Task::Name { .. } | Task::Compare { .. } => &self.between,
+            Task::Prepare(..) | Task::Paint(_) | Task::Follow { .. } | Task::Run(_) => &self.quick,
         };
         let is_quick = !matches!(task, Task::Read(..) | Task::Solve { .. });
         self.flags.insert(id, (Arc::clone(&stop), is_quick));

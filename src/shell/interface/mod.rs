@@ -24,8 +24,9 @@ use std::time::{Duration, Instant};
 use anyhow::{Context, Result};
 
 use crate::app::{App, Effect, Msg, Size, Source, update};
+use crate::shell::memory::Memory;
 use crate::shell::workers::Threads;
-use crate::ui::view;
+use crate::ui::{text, view};
 use effects::Outside;
 use labour::Labour;
 use painter::Painter;
@@ -104,7 +105,7 @@ pub fn run(start: Start) -> Result<End> {
     let mut interface = Interface {
         app,
         painter: Painter::new(start.abilities.style, start.abilities.depth),
-        outside: Outside::new(labour, sender),
+        outside: Outside::new(labour, sender, Memory::open()),
         output: screen::output()?,
     };
     let end = interface.go(&events);
@@ -183,6 +184,10 @@ impl Interface {
                 Effect::Leave => end = Some(End::Left),
                 Effect::Redraw => self.painter.forget(),
                 Effect::Suspend => screen::ask_for_pause(),
+                Effect::WriteScreen { path, replace } => {
+                    let text = text(&self.app);
+                    ending::whole(|| self.outside.perform(Effect::Write { path, text, replace }));
+                }
                 effect => ending::whole(|| self.outside.perform(effect)),
             }
         }

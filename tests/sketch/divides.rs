@@ -2,11 +2,9 @@
 //! within a cell of the line, and no part of the line missing.
 #![allow(clippy::unwrap_used, clippy::panic, reason = "a test fails by panicking")]
 
-mod sketch_support;
-
+use crate::sketch_support::{Loaded, Seen, USUAL, loaded};
 use restpoint::analysis::field::{Frame, LINEAR, Portrait, Scale, Window};
 use restpoint::report::sketch::{Picture, Size};
-use sketch_support::{Loaded, Seen, USUAL, loaded};
 
 /// A line as the zeros of a function, and points on it.
 struct Known {

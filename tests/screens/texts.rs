@@ -1,0 +1,15 @@
+//! Screens against the texts that they are to show.
+
+use std::fs;
+use std::path::Path;
+
+use crate::bench::Bench;
+
+/// Fails with the whole screen unless it is as the file of that name in `tests/files/screens` has it.
+#[track_caller]
+pub(crate) fn looks_as(bench: &Bench, name: &str) {
+    let path = Path::new(env!("CARGO_MANIFEST_DIR")).join("tests/files/screens").join(format!("{name}.txt"));
+    let expected = fs::read_to_string(&path).unwrap_or_default();
+    let shown = bench.text();
+    assert!(shown == expected, "{name} is not as expected, but\n{shown}");
+}
