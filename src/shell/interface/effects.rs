@@ -7,6 +7,7 @@ use std::sync::mpsc::{Receiver, RecvTimeoutError, Sender, channel};
 use std::thread::{Builder, JoinHandle};
 use std::time::{Duration, Instant};
 
+use super::ending::whole;
 use super::labour::Labour;
 use super::{Event, Events};
 use crate::app::{Effect, JobId, Msg, Source};
@@ -114,15 +115,15 @@ fn run_errands(orders: &Receiver<Effect>, mut errands: Errands, events: &Events)
             Ok(keep @ Effect::Keep(..)) => put_off(keep, &mut kept, &mut errands),
             Ok(errand) => {
                 if let Some((keep, _)) = kept.take() {
-                    errands.run(keep);
+                    whole(|| errands.run(keep));
                 }
-                if let Some(answer) = errands.run(errand) {
+                if let Some(answer) = whole(|| errands.run(errand)) {
                     let _ = events.send(Event::Msg(answer));
                 }
             }
             Err(reason) => {
                 if let Some((keep, _)) = kept.take() {
-                    errands.run(keep);
+                    whole(|| errands.run(keep));
                 }
                 if reason == RecvTimeoutError::Disconnected {
                     return;
@@ -141,7 +142,7 @@ fn put_off(keep: Effect, kept: &mut Kept, errands: &mut Errands) {
     let due = match kept.take() {
         Some((old, due)) if is_same(&old) => due,
         Some((old, _)) => {
-            errands.run(old);
+            whole(|| errands.run(old));
             Instant::now() + PATIENCE
         }
         None => Instant::now() + PATIENCE,

@@ -1,7 +1,7 @@
 //! Ends the process when the loop cannot: it may be writing to a terminal that takes nothing any more, or be stuck.
 
 use std::process;
-use std::sync::atomic::{AtomicBool, Ordering};
+use std::sync::atomic::{AtomicUsize, Ordering};
 use std::sync::mpsc::channel;
 use std::thread;
 use std::time::{Duration, Instant};
@@ -15,13 +15,14 @@ const FILE: Duration = Duration::from_secs(3);
 /// How often it is looked whether the file is written.
 const LOOK: Duration = Duration::from_millis(10);
 
-static IS_WRITING: AtomicBool = AtomicBool::new(false);
+/// How much is under way that is to be done whole.
+static WRITING: AtomicUsize = AtomicUsize::new(0);
 
 /// Does something that is to be done whole, such as writing a file: the process does not end by itself meanwhile.
 pub(super) fn whole<T>(work: impl FnOnce() -> T) -> T {
-    IS_WRITING.store(true, Ordering::SeqCst);
+    WRITING.fetch_add(1, Ordering::SeqCst);
     let done = work();
-    IS_WRITING.store(false, Ordering::SeqCst);
+    WRITING.fetch_sub(1, Ordering::SeqCst);
     done
 }
 
@@ -29,7 +30,7 @@ pub(super) fn whole<T>(work: impl FnOnce() -> T) -> T {
 pub(super) fn end(code: i32) -> ! {
     thread::sleep(GRACE);
     let until = Instant::now() + FILE;
-    while IS_WRITING.load(Ordering::SeqCst) && Instant::now() < until {
+    while WRITING.load(Ordering::SeqCst) > 0 && Instant::now() < until {
         thread::sleep(LOOK);
     }
     // A terminal that takes nothing would hold this thread up as well.

@@ -101,7 +101,7 @@ pub fn run(start: Start) -> Result<End> {
         app.edition += 1;
         app.reading = Some((source, app.edition));
     }
-    let labour = Labour::start(start.threads, sender.clone());
+    let labour = Labour::start(start.threads, &sender);
     let mut interface = Interface {
         app,
         painter: Painter::new(start.abilities.style, start.abilities.depth),
@@ -110,6 +110,8 @@ pub fn run(start: Start) -> Result<End> {
     };
     let end = interface.go(&events);
     drop(screen);
+    // What is still to be written is written; the user sees the shell meanwhile.
+    ending::whole(|| drop(interface));
     Ok(end)
 }
 
@@ -184,9 +186,9 @@ impl Interface {
                 Effect::Suspend => screen::ask_for_pause(),
                 Effect::WriteScreen { path, replace } => {
                     let text = text(&self.app);
-                    ending::whole(|| self.outside.perform(Effect::Write { path, text, replace }));
+                    self.outside.perform(Effect::Write { path, text, replace });
                 }
-                effect => ending::whole(|| self.outside.perform(effect)),
+                effect => self.outside.perform(effect),
             }
         }
         end
