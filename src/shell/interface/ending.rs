@@ -1,7 +1,7 @@
 //! Ends the process when the loop cannot: it may be writing to a terminal that takes nothing any more, or be stuck.
 
 use std::process;
-use std::sync::atomic::{AtomicBool, Ordering};
+use std::sync::atomic::{AtomicUsize, Ordering};
 use std::sync::mpsc::channel;
 use std::thread;
 use std::time::{Duration, Instant};
@@ -15,21 +15,29 @@ const FILE: Duration = Duration::from_secs(3);
 /// How often it is looked whether the file is written.
 const LOOK: Duration = Duration::from_millis(10);
 
-static IS_WRITING: AtomicBool = AtomicBool::new(false);
+static UNFINISHED: AtomicUsize = AtomicUsize::new(0);
 
-/// Does something that is to be done whole, such as writing a file: the process does not end by itself meanwhile.
-pub(super) fn whole<T>(work: impl FnOnce() -> T) -> T {
-    IS_WRITING.store(true, Ordering::SeqCst);
-    let done = work();
-    IS_WRITING.store(false, Ordering::SeqCst);
-    done
+/// Something that is to be done whole, such as writing a file: while it is there, the process does not end by itself.
+pub(super) struct Whole(());
+
+impl Whole {
+    pub(super) fn begin() -> Self {
+        UNFINISHED.fetch_add(1, Ordering::SeqCst);
+        Self(())
+    }
+}
+
+impl Drop for Whole {
+    fn drop(&mut self) {
+        UNFINISHED.fetch_sub(1, Ordering::SeqCst);
+    }
 }
 
 /// Ends the process after a while, if it has not ended until then.
 pub(super) fn end(code: i32) -> ! {
     thread::sleep(GRACE);
     let until = Instant::now() + FILE;
-    while IS_WRITING.load(Ordering::SeqCst) && Instant::now() < until {
+    while UNFINISHED.load(Ordering::SeqCst) > 0 && Instant::now() < until {
         thread::sleep(LOOK);
     }
     // A terminal that takes nothing would hold this thread up as well.

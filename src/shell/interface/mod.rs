@@ -184,9 +184,9 @@ impl Interface {
                 Effect::Suspend => screen::ask_for_pause(),
                 Effect::WriteScreen { path, replace } => {
                     let text = text(&self.app);
-                    ending::whole(|| self.outside.perform(Effect::Write { path, text, replace }));
+                    self.outside.perform(Effect::Write { path, text, replace });
                 }
-                effect => ending::whole(|| self.outside.perform(effect)),
+                effect => self.outside.perform(effect),
             }
         }
         end
