@@ -96,7 +96,15 @@ impl Parts {
 
 /// The comparison of the scenarios that are shown; `None` before all are searched and named.
 pub fn task(app: &App, study: &Study) -> Option<Task> {
-    let slots = shown(study, app.size);
+    comparing(app, study, &shown(study, app.size))
+}
+
+/// The comparison of the tried values with the scenario that they are set over.
+pub fn tried(app: &App, study: &Study) -> Option<Task> {
+    comparing(app, study, &[study.base_slot()?, study.tried_slot()?])
+}
+
+fn comparing(app: &App, study: &Study, slots: &[usize]) -> Option<Task> {
     let nameable = study.nameable();
     let is_ready = |slot: &usize| nameable.contains(slot) && is_named(study, *slot);
     if slots.len() < 2 || !slots.iter().all(is_ready) {

@@ -25,6 +25,9 @@ pub fn wants(app: &App) -> Vec<Task> {
     tasks.extend(naming(app, study));
     match app.screen {
         Screen::Equilibria | Screen::Values => {
+            if app.screen == Screen::Values {
+                tasks.extend(beside::tried(app, study));
+            }
             tasks.extend(painting(study, study.current, sketch_size(app, study)).map(Task::Paint));
             tasks.extend(paths(study));
         }

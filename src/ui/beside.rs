@@ -37,7 +37,7 @@ pub(super) fn draw(app: &App, study: &Study, page: &mut Page<'_>) {
     }
 }
 
-fn with(known: &Compared, show: impl FnOnce(&Comparison<'_>)) {
+pub(super) fn with<T>(known: &Compared, show: impl FnOnce(&Comparison<'_>) -> T) -> T {
     let table = Table {
         model: &known.world.original.model,
         sha256: &known.world.original.sha256,
@@ -51,7 +51,7 @@ fn with(known: &Compared, show: impl FnOnce(&Comparison<'_>)) {
         interrupted: false,
         columns: None,
     };
-    show(&Comparison::new(&table, &known.passages));
+    show(&Comparison::new(&table, &known.passages))
 }
 
 fn lists(study: &Study, slots: &[usize], comparison: &Comparison<'_>, page: &mut Page<'_>, parts: &Parts) {

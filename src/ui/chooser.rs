@@ -57,7 +57,9 @@ fn list(app: &App, page: &mut Page<'_>, area: Area) {
     let room = usize::from(area.rows.saturating_sub(1));
     for (row, (place, entry)) in shown.entries.iter().enumerate().skip(shown.from).take(room).enumerate() {
         let row = row as u16 + 1;
-        columns.line(entry, page, area, row);
+        let is_twin = shown.entries.iter().filter(|other| other.title == entry.title).count() > 1;
+        let title = if is_twin { format!("{}: {}", entry.name, entry.title) } else { entry.title.clone() };
+        columns.line(entry, &title, page, area, row);
         if place == shown.chosen {
             page.text(area, [0, row], ">", Ink::Strong);
             page.row(area, row, Ink::Chosen);
@@ -82,13 +84,13 @@ impl Columns {
         Self { species: if has_species { species } else { count }, count, origin, has_species }
     }
 
-    fn line(&self, entry: &Entry, page: &mut Page<'_>, area: Area, row: u16) {
+    fn line(&self, entry: &Entry, title: &str, page: &mut Page<'_>, area: Area, row: u16) {
         let until = |column: u16| Area { columns: column.saturating_sub(1), ..area };
         if let Some(problem) = &entry.problem {
             let text = format!("! {}: {problem}", entry.name);
             page.text(until(self.origin), [2, row], &text, Ink::Warning);
         } else {
-            page.text(until(self.species), [2, row], &entry.title, Ink::Plain);
+            page.text(until(self.species), [2, row], title, Ink::Plain);
             if self.has_species {
                 page.text(until(self.count), [self.species, row], &entry.species.join(", "), Ink::Plain);
             }

@@ -6,7 +6,6 @@
 mod beside;
 mod chooser;
 mod dialog;
-mod difference;
 mod equilibria;
 mod interactions;
 mod knock;

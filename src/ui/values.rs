@@ -2,15 +2,17 @@
 
 use unicode_width::UnicodeWidthStr;
 
-use super::difference;
+use super::beside::with;
 use super::paint::Page;
 use super::sketch::Shown;
 use crate::app::action::{Action, Step};
+use crate::app::beside::{compared, tried as tried_task};
 use crate::app::geometry::{Area, listed, values};
 use crate::app::keymap::{Place, key_of};
 use crate::app::trial::{COARSE, step};
 use crate::app::{App, Screen, Study};
 use crate::model::{Parameter, ParameterId};
+use crate::report::compare::summary;
 use crate::report::grid::Ink;
 use crate::report::kinds;
 use crate::report::table::{Solved, human};
@@ -49,16 +51,14 @@ fn sentence(app: &App, study: &Study) -> String {
     };
     let slot = |slot: usize| study.slots.get(slot).filter(|slot| slot.is_fresh());
     let Some((old, new)) = slot(before).zip(slot(tried)) else {
-        let is_stopped = app.desk.search().is_none() && app.desk.jobs().is_empty();
-        let waits = if is_stopped { "not searched" } else { "being searched" };
+        let waits = if app.desk.jobs().is_empty() { "not searched" } else { "being searched" };
         return format!("With the tried values \"{base}\" is {waits}; below is what was found before.");
     };
     match (old.solved(), new.solved()) {
-        (Some(old), Some(new)) => {
-            let before = difference::Side { solved: old, ids: study.names(before) };
-            let now = difference::Side { solved: new, ids: study.names(tried) };
-            format!("Against \"{base}\": {}", difference::words(before, now, app.style))
-        }
+        (Some(_), Some(_)) => match tried_task(app, study).and_then(|task| compared(&app.desk, &task)) {
+            Some(known) => format!("Against \"{base}\": {}", with(known, |comparison| summary(comparison, 1))),
+            None => format!("What changes against \"{base}\" is being followed."),
+        },
         (None, _) => format!("\"{base}\" could not be searched, so there is nothing to compare with."),
         (_, None) => {
             let problems = new.found.as_ref().and_then(|(_, scene)| scene.outcome.as_ref().err());

@@ -15,7 +15,7 @@ scenarios: {first: {}, second: {values: {k: 4}}}
 fn a_model_is_read_and_searched_and_shown() {
     for size in SIZES {
         let bench = Bench::of(TWO).at(size).ascii();
-        bench.shows(&["two levels", "first (1 of 2)", "E1", "E4", "5.000", "3.000"]);
+        bench.shows(&["two levels", "first (1 of 2)", "E1", "E4", "5.000"]);
         assert!(bench.text().is_ascii());
         assert_eq!(bench.text().lines().count(), usize::from(size[1]));
     }

@@ -99,7 +99,7 @@ fn the_tried_scenario_is_one_of_its_own_and_says_what_changed() {
         bench.press("t1<Enter>");
         bench.shows(&["tried: first (3 of 3)", "is lost", "2 equilibria of S, C", "1.000, 0 stable node"]);
         // The coexistence is what matters most, so it comes first.
-        bench.shows(&["Against \"first\": E3 is lost"]);
+        bench.shows(&["Against \"first\": E3 is lost where C reaches 0 and it meets"]);
         bench.press("ef");
         bench.shows(&["first (1 of 3)"]);
         bench.hides(&["tried:"]);
@@ -112,7 +112,7 @@ fn what_only_moves_is_said_to_have_moved() {
     let mut bench = Bench::of(FOOD).at([200, 50]);
     bench.press("vt6<Enter>");
     bench.shows(&["Against \"first\": E3 moved to 6.000, 4.000;", "moved to 6.000, 0"]);
-    bench.hides(&["is lost", "is new", "is now"]);
+    bench.hides(&["is lost", "is gained", "is now"]);
     bench.press("g");
     bench.shows(&["Nothing is tried over \"first\" yet", "the tried values are given up"]);
     // A value that changes nothing of what is shown.

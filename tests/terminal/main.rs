@@ -1,6 +1,6 @@
 //! The program as its users meet it: built, and run in a pseudo-terminal.
 //!
-//! `session` runs it and looks at its screen; `walks` uses it, `endings` ends it in every way there is, `pauses` stops it and
+//! `session` runs it and looks at its screen; `walks` uses it, `kept` starts it again, `endings` ends it in every way there is, `pauses` stops it and
 //! lets it go on, `abilities` counts what terminals of all kinds get, `panics` has it fail. What an own screen looks like is
 //! tested without a terminal, in `app` and `ui`.
 
@@ -9,6 +9,7 @@
 
 mod abilities;
 mod endings;
+mod kept;
 mod panics;
 mod pauses;
 mod session;

@@ -62,6 +62,8 @@ impl Setup {
         ["NO_COLOR", "LC_ALL", "LC_CTYPE", "COLORTERM"].iter().for_each(|name| command.env_remove(name));
         command.env("TERM", "xterm-256color");
         command.env("LANG", "C.UTF-8");
+        // Where nothing can be kept: no test is to find what another left, nor to leave anything with its user.
+        command.env("XDG_STATE_HOME", "/dev/null");
         self.environment.iter().for_each(|(name, value)| command.env(name, value));
         command.set_controlling_tty(self.controls);
         command

@@ -17,7 +17,7 @@ pub(super) fn arrive(app: &mut App, msg: Msg) -> Vec<Effect> {
         Msg::Advanced(id, progress) => app.desk.advance(id, progress),
         Msg::Written(what) => record::written(app, what),
         Msg::Completed(asked, completion) => entry::completed(app, &asked, completion),
-        Msg::Suggested(path) => app.suggestion = Some(path),
+        Msg::Suggested(path) => record::suggestion(app, path),
         Msg::Listed(listing, entry) => chooser::listed(app, listing, entry),
         Msg::AllListed(listing) => chooser::all_listed(app, listing),
         Msg::Recalled(source, session) => session::recalled(app, &source, session),

@@ -58,9 +58,21 @@ pub(super) fn name_taken(app: &mut App, entry: Entry, name: String) {
         again(app, entry, "there is a scenario of that name already");
         return;
     }
-    let path =
-        app.suggestion.as_ref().map_or_else(|| "copy.yaml".to_owned(), |path| path.to_string_lossy().into_owned());
+    let path = app.suggestion.as_ref().map_or_else(String::new, |path| path.to_string_lossy().into_owned());
     open(app, Purpose::RecordTo(name), path, "a copy of the model file, with the new scenario at its end");
+}
+
+/// A free name for the copy, which is there from the beginning where it is asked for slowly enough.
+pub(super) fn suggestion(app: &mut App, path: PathBuf) {
+    if let Some(Dialog::Entry(entry)) = &mut app.dialog
+        && matches!(entry.purpose, Purpose::RecordTo(_))
+        && entry.text.is_empty()
+    {
+        entry.text = path.to_string_lossy().into_owned();
+        entry.cursor = entry.text.len();
+        entry.suggested = true;
+    }
+    app.suggestion = Some(path);
 }
 
 /// Has the copy written.

@@ -24,6 +24,7 @@ mod latex;
 mod markdown;
 mod quantity;
 mod sheet;
+mod summary;
 mod text;
 mod words;
 
@@ -32,6 +33,7 @@ pub use data::json;
 pub use latex::latex;
 pub use markdown::markdown;
 pub use quantity::{Measured, Quantity};
+pub use summary::summary;
 pub use text::text;
 pub use words::difference;
 

@@ -7,7 +7,7 @@ use std::sync::mpsc::{Receiver, RecvTimeoutError, Sender, channel};
 use std::thread::{Builder, JoinHandle};
 use std::time::{Duration, Instant};
 
-use super::ending::whole;
+use super::ending::Whole;
 use super::labour::Labour;
 use super::{Event, Events};
 use crate::app::{Effect, JobId, Msg, Source};
@@ -24,7 +24,7 @@ pub(super) struct Outside {
     events: Events,
     memory: Memory,
     /// Gone at the end: the thread then does what is left and ends.
-    errands: Option<Sender<Effect>>,
+    errands: Option<Sender<Errand>>,
     thread: Option<JoinHandle<()>>,
     watch: Option<Watch>,
 }
@@ -56,7 +56,7 @@ impl Outside {
             Effect::Redraw | Effect::Suspend | Effect::Leave | Effect::WriteScreen { .. } => {}
             errand => {
                 if let Some(errands) = &self.errands {
-                    let _ = errands.send(errand);
+                    let _ = errands.send((errand, Whole::begin()));
                 }
             }
         }
@@ -100,10 +100,13 @@ impl Drop for Outside {
     }
 }
 
-/// What is to be kept, and until when it may wait.
-type Kept = Option<(Effect, Instant)>;
+/// An errand, and that it is to be done whole: from when it is asked for until it is done.
+type Errand = (Effect, Whole);
 
-fn run_errands(orders: &Receiver<Effect>, mut errands: Errands, events: &Events) {
+/// What is to be kept, and until when it may wait.
+type Kept = Option<(Errand, Instant)>;
+
+fn run_errands(orders: &Receiver<Errand>, mut errands: Errands, events: &Events) {
     let mut kept: Kept = None;
     loop {
         let wait = kept.as_ref().map(|(_, due)| due.saturating_duration_since(Instant::now()));
@@ -112,40 +115,37 @@ fn run_errands(orders: &Receiver<Effect>, mut errands: Errands, events: &Events)
             None => orders.recv().map_err(|_| RecvTimeoutError::Disconnected),
         };
         match order {
-            Ok(keep @ Effect::Keep(..)) => put_off(keep, &mut kept, &mut errands),
-            Ok(errand) => {
-                if let Some((keep, _)) = kept.take() {
-                    whole(|| errands.run(keep));
-                }
-                if let Some(answer) = whole(|| errands.run(errand)) {
+            Ok(keep @ (Effect::Keep(..), _)) => put_off(keep, &mut kept, &mut errands),
+            Ok((errand, _whole)) => {
+                keep_now(&mut kept, &mut errands);
+                if let Some(answer) = errands.run(errand) {
                     let _ = events.send(Event::Msg(answer));
                 }
             }
-            Err(reason) => {
-                if let Some((keep, _)) = kept.take() {
-                    whole(|| errands.run(keep));
-                }
-                if reason == RecvTimeoutError::Disconnected {
-                    return;
-                }
+            Err(RecvTimeoutError::Timeout) => keep_now(&mut kept, &mut errands),
+            Err(RecvTimeoutError::Disconnected) => {
+                keep_now(&mut kept, &mut errands);
+                return;
             }
         }
     }
 }
 
+fn keep_now(kept: &mut Kept, errands: &mut Errands) {
+    if let Some(((keep, _whole), _)) = kept.take() {
+        errands.run(keep);
+    }
+}
+
 /// The later takes the place of the earlier where both are of the same model; a change that goes on is kept all the same.
-fn put_off(keep: Effect, kept: &mut Kept, errands: &mut Errands) {
-    let is_same = |old: &Effect| match (old, &keep) {
+fn put_off(keep: Errand, kept: &mut Kept, errands: &mut Errands) {
+    let is_same = |old: &Effect| match (old, &keep.0) {
         (Effect::Keep(old, _), Effect::Keep(new, _)) => old == new,
         _ => false,
     };
-    let due = match kept.take() {
-        Some((old, due)) if is_same(&old) => due,
-        Some((old, _)) => {
-            whole(|| errands.run(old));
-            Instant::now() + PATIENCE
-        }
-        None => Instant::now() + PATIENCE,
-    };
-    *kept = Some((keep, due));
+    let due = kept.as_ref().filter(|((old, _), _)| is_same(old)).map(|(_, due)| *due);
+    if due.is_none() {
+        keep_now(kept, errands);
+    }
+    *kept = Some((keep, due.unwrap_or_else(|| Instant::now() + PATIENCE)));
 }

@@ -15,22 +15,29 @@ const FILE: Duration = Duration::from_secs(3);
 /// How often it is looked whether the file is written.
 const LOOK: Duration = Duration::from_millis(10);
 
-/// How much is under way that is to be done whole.
-static WRITING: AtomicUsize = AtomicUsize::new(0);
+static UNFINISHED: AtomicUsize = AtomicUsize::new(0);
 
-/// Does something that is to be done whole, such as writing a file: the process does not end by itself meanwhile.
-pub(super) fn whole<T>(work: impl FnOnce() -> T) -> T {
-    WRITING.fetch_add(1, Ordering::SeqCst);
-    let done = work();
-    WRITING.fetch_sub(1, Ordering::SeqCst);
-    done
+/// Something that is to be done whole, such as writing a file: while it is there, the process does not end by itself.
+pub(super) struct Whole(());
+
+impl Whole {
+    pub(super) fn begin() -> Self {
+        UNFINISHED.fetch_add(1, Ordering::SeqCst);
+        Self(())
+    }
+}
+
+impl Drop for Whole {
+    fn drop(&mut self) {
+        UNFINISHED.fetch_sub(1, Ordering::SeqCst);
+    }
 }
 
 /// Ends the process after a while, if it has not ended until then.
 pub(super) fn end(code: i32) -> ! {
     thread::sleep(GRACE);
     let until = Instant::now() + FILE;
-    while WRITING.load(Ordering::SeqCst) > 0 && Instant::now() < until {
+    while UNFINISHED.load(Ordering::SeqCst) > 0 && Instant::now() < until {
         thread::sleep(LOOK);
     }
     // A terminal that takes nothing would hold this thread up as well.

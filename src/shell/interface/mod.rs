@@ -111,7 +111,9 @@ pub fn run(start: Start) -> Result<End> {
     let end = interface.go(&events);
     drop(screen);
     // What is still to be written is written; the user sees the shell meanwhile.
-    ending::whole(|| drop(interface));
+    let whole = ending::Whole::begin();
+    drop(interface);
+    drop(whole);
     Ok(end)
 }
 
