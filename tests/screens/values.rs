@@ -1,6 +1,7 @@
 //! Values are tried: what steps do, what they may not, what is said of it, and the way back.
 
 use crate::bench::{Bench, SIZES};
+use crate::texts::looks_as;
 
 /// S grows to k; C is there where k is above 2. So E2 = (k, 0) is a sink below k = 2 and a saddle above, where E3 is at
 /// (k, k − 2).
@@ -198,4 +199,14 @@ fn a_model_without_parameters_has_none_to_try() {
     bench.shows(&["The model has no parameters."]);
     bench.press("N");
     bench.shows(&["! no values are tried"]);
+}
+
+#[test]
+fn the_screen_looks_as_it_should() {
+    let mut bench = Bench::open("skarnby-bank").at([80, 24]);
+    bench.press("v");
+    looks_as(&bench, "values-untried-80x24");
+    bench.press("t2.5<Enter>");
+    looks_as(&bench, "values-tried-80x24");
+    looks_as(&bench.at([60, 20]).ascii(), "values-tried-60x20-ascii");
 }
