@@ -30,6 +30,15 @@ pub fn names<'s>(ways: &mut Ways, scenes: impl IntoIterator<Item = &'s Scene>, s
     Names::new(&identify(ways, &all_found, stop))
 }
 
+/// The same for scenarios and one more, whose values are set over that at place `base`: what can be followed from there
+/// keeps its name, and no name of the others depends on what is tried.
+pub fn names_over(ways: &mut Ways, scenes: &[&Scene], base: usize, tried: &Scene, stop: &dyn Fn() -> bool) -> Names {
+    let named = names(ways, scenes.iter().copied(), stop);
+    let ends = scenes.get(base).and_then(|base| found(base)).zip(found(tried));
+    let passage = ends.map(|(base, tried)| ways.passage([base, tried], stop)).unwrap_or_default();
+    named.with_one_over(base, &passage, found(tried).map_or(0, |tried| tried.list.len()))
+}
+
 /// From the first scenario with a list to each other one that has a list; `None` for the rest.
 pub fn passages(ways: &mut Ways, scenes: &[Scene], stop: &dyn Fn() -> bool) -> Vec<Option<Passage>> {
     let all_found: Vec<Option<Found<'_>>> = scenes.iter().map(found).collect();

@@ -210,3 +210,25 @@ fn the_screen_looks_as_it_should() {
     looks_as(&bench, "values-tried-80x24");
     looks_as(&bench.at([60, 20]).ascii(), "values-tried-60x20-ascii");
 }
+
+#[test]
+fn what_is_tried_names_nothing_of_the_file_anew_and_has_its_names_from_its_base() {
+    let mut bench = Bench::open("skarnby-bank");
+    let names = |bench: &Bench| bench.app.study.as_ref().unwrap().names.clone();
+    let before = names(&bench);
+    // In the third scenario, before the tried one in the list, E2 and E4 are lost.
+    bench.press("vt2.5<Enter>");
+    let after = names(&bench);
+    assert_eq!(after[..5], before);
+    assert_eq!(after[5], ["E1", "E2", "E3", "E4"]);
+    // A state that no scenario of the file has: between two folds.
+    let mut bench = Bench::of(
+        "title: folds\ntime: yr\nspecies: {S: {unit: kt, upper: 20}}\nparameters: {q: 0}\n\
+         change: {S: S*(S - 2 + q)*(6 - S)}\n",
+    );
+    let names_of = |bench: &Bench, slot: usize| names(bench)[slot].join(" ");
+    assert_eq!(names_of(&bench, 0), "E1 E2 E3");
+    bench.press("vt2.5<Enter>");
+    assert_eq!(names_of(&bench, 1), "E1 E3");
+    bench.shows(&["E2 is lost where S reaches 0"]);
+}
