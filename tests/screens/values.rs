@@ -221,7 +221,7 @@ fn what_is_tried_names_nothing_of_the_file_anew_and_has_its_names_from_its_base(
     let after = names(&bench);
     assert_eq!(after[..5], before);
     assert_eq!(after[5], ["E1", "E2", "E3", "E4"]);
-    // A state that no scenario of the file has: between two folds.
+    // A state that becomes negative on the way is lost, and no other takes its name.
     let mut bench = Bench::of(
         "title: folds\ntime: yr\nspecies: {S: {unit: kt, upper: 20}}\nparameters: {q: 0}\n\
          change: {S: S*(S - 2 + q)*(6 - S)}\n",
