@@ -51,7 +51,7 @@ impl Study {
 
     /// The slot of the file's scenario that values are tried over.
     pub fn base_slot(&self) -> Option<usize> {
-        let base = self.base();
+        let base = self.tried.now.base;
         (0..self.of_file()).find(|&slot| self.slots.get(slot).is_some_and(|slot| slot.scenario == base))
     }
 

@@ -45,6 +45,7 @@ impl Model {
     }
 
     /// The model with one more scenario at its end: that of index `base` with some values set over it, under the same name.
+    #[must_use]
     pub fn with_values_over(&self, base: usize, values: &[(ParameterId, f64)]) -> Self {
         let mut model = self.clone();
         if let Some(mut scenario) = self.scenarios.get(base).cloned() {

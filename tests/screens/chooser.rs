@@ -4,6 +4,7 @@ use restpoint::app::catalogue::{Entry, Origin};
 use restpoint::app::{Msg, Source};
 
 use crate::bench::{Bench, SIZES, shipped};
+use crate::texts::looks_as;
 
 fn entry(name: &str, title: &str, problem: Option<&str>) -> Entry {
     Entry {
@@ -106,4 +107,21 @@ fn what_was_opened_before_is_listed_next_time() {
     let listed: Vec<&Entry> = again.app.chooser.entries.iter().filter(named).collect();
     assert_eq!(listed.iter().map(|entry| entry.origin).collect::<Vec<_>>(), [Origin::Recent]);
     assert_eq!(shipped("skarnby-bank").is_file(), again.app.chooser.entries.len() > 10);
+}
+
+#[test]
+fn the_screen_looks_as_it_should() {
+    let problem = "bad.yaml:7:3: nothing is called \"foo\"";
+    let entries = || vec![entry("one.yaml", "The same title", None), entry("two.yaml", "The same title", None)];
+    let mut all = entries();
+    all.push(entry("bad.yaml", "", Some(problem)));
+    all.push(Entry {
+        origin: Origin::Compiled,
+        ..entry("scenarios/sound.yaml", "A sound with a name that is long", None)
+    });
+    let mut bench = with(all);
+    bench.tell(Msg::AllListed(7));
+    bench.press("nn");
+    looks_as(&bench, "chooser-80x24");
+    looks_as(&bench.at([60, 20]).ascii(), "chooser-60x20-ascii");
 }

@@ -1,6 +1,7 @@
 //! Values are tried: what steps do, what they may not, what is said of it, and the way back.
 
 use crate::bench::{Bench, SIZES};
+use crate::texts::looks_as;
 
 /// S grows to k; C is there where k is above 2. So E2 = (k, 0) is a sink below k = 2 and a saddle above, where E3 is at
 /// (k, k − 2).
@@ -198,4 +199,36 @@ fn a_model_without_parameters_has_none_to_try() {
     bench.shows(&["The model has no parameters."]);
     bench.press("N");
     bench.shows(&["! no values are tried"]);
+}
+
+#[test]
+fn the_screen_looks_as_it_should() {
+    let mut bench = Bench::open("skarnby-bank").at([80, 24]);
+    bench.press("v");
+    looks_as(&bench, "values-untried-80x24");
+    bench.press("t2.5<Enter>");
+    looks_as(&bench, "values-tried-80x24");
+    looks_as(&bench.at([60, 20]).ascii(), "values-tried-60x20-ascii");
+}
+
+#[test]
+fn what_is_tried_names_nothing_of_the_file_anew_and_has_its_names_from_its_base() {
+    let mut bench = Bench::open("skarnby-bank");
+    let names = |bench: &Bench| bench.app.study.as_ref().unwrap().names.clone();
+    let before = names(&bench);
+    // In the third scenario, before the tried one in the list, E2 and E4 are lost.
+    bench.press("vt2.5<Enter>");
+    let after = names(&bench);
+    assert_eq!(after[..5], before);
+    assert_eq!(after[5], ["E1", "E2", "E3", "E4"]);
+    // A state that becomes negative on the way is lost, and no other takes its name.
+    let mut bench = Bench::of(
+        "title: folds\ntime: yr\nspecies: {S: {unit: kt, upper: 20}}\nparameters: {q: 0}\n\
+         change: {S: S*(S - 2 + q)*(6 - S)}\n",
+    );
+    let names_of = |bench: &Bench, slot: usize| names(bench)[slot].join(" ");
+    assert_eq!(names_of(&bench, 0), "E1 E2 E3");
+    bench.press("vt2.5<Enter>");
+    assert_eq!(names_of(&bench, 1), "E1 E3");
+    bench.shows(&["E2 is lost where S reaches 0"]);
 }

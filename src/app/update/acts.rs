@@ -119,10 +119,8 @@ pub(super) fn reload(app: &mut App) {
 fn walk(app: &mut App, step: Step) {
     let page = usize::from(app.size.rows / 2).max(1);
     match (&mut app.dialog, app.screen, &mut app.study) {
-        (Some(Dialog::Help { from } | Dialog::Message { from, .. }), ..) => {
-            *from = stepped(*from, usize::MAX, page, step);
-        }
-        (Some(Dialog::Entry(_)), ..) => {}
+        (Some(Dialog::Help { from }), ..) => *from = stepped(*from, usize::MAX, page, step),
+        (Some(Dialog::Message { from, lines, .. }), ..) => *from = stepped(*from, lines.len(), page, step),
         (None, Screen::Chooser, _) => {
             app.chooser.chosen = stepped(app.chooser.chosen, app.chooser.entries.len(), page, step);
         }

@@ -1,6 +1,5 @@
 //! What comes from outside: answers, files that were written, a model that has changed.
 
-use std::path::PathBuf;
 use std::sync::Arc;
 
 use super::acts::reload;
@@ -87,25 +86,20 @@ fn read_model(app: &mut App, source: Source, read: Read) -> Vec<Effect> {
 
 fn open(app: &mut App, source: Source, world: &Arc<World>) {
     let model = &world.original.model;
-    app.study = Some(Study::new(source, Arc::clone(world), shown(model, &app.only)));
+    let mut study = Study::new(source, Arc::clone(world), shown(model, &app.only));
+    // The copy that was recorded last is opened for its new scenario.
+    let copy = app.copy.as_ref().filter(|(path, _)| study.source == Source::File(path.clone()));
+    let place = copy.and_then(|(_, scenario)| study.slots.iter().position(|slot| slot.name() == scenario));
+    study.current = place.unwrap_or(0);
+    app.study = Some(study);
     app.screen = Screen::Equilibria;
     app.notice = None;
     app.dialog = None;
-    if let (Some(study), Some((_, scenario))) = (&mut app.study, &app.copy) {
-        let at =
-            study.slots.iter().position(|slot| slot.name() == scenario).filter(|_| is_copy(&app.copy, &study.source));
-        study.current = at.unwrap_or(0);
-    }
     let unknown: Vec<&str> =
         app.set.iter().map(|(name, _)| name.as_str()).filter(|name| !model.names.contains_key(*name)).collect();
     if !unknown.is_empty() {
         app.complain(format!("this model has no parameter {}, which was set at the start", unknown.join(", ")));
     }
-}
-
-/// Whether a model is the copy that was recorded last: it is opened for its new scenario.
-fn is_copy(copy: &Option<(PathBuf, String)>, source: &Source) -> bool {
-    copy.as_ref().is_some_and(|(path, _)| *source == Source::File(path.clone()))
 }
 
 /// The tried scenario has its equations: it takes the last slot. What was found with other values is shown until it is
