@@ -228,7 +228,7 @@ def main():
     shutil.copy2(program, own)
     long = folder / "long.yaml"
     long.write_text(LONG)
-    command = f"LANG=C.UTF-8 exec {own}"
+    command = f"LANG=C.UTF-8 XDG_STATE_HOME={folder / 'state'} exec {own}"
     with server(folder) as port:
         line = Line(folder, port, f"{command} {MODEL}")
         whole = check_session(line, folder)
