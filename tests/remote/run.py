@@ -164,6 +164,21 @@ class Line:
             if not self.read() or time.monotonic() > end:
                 fail(f"no answer to {keys!r}; there was {self.bytes[-3000:]!r}")
 
+    def wait_until_done(self):
+        """Waits until nothing is searched any more: then the caution stands where the progress stood."""
+        end = time.monotonic() + LIMIT
+        while True:
+            start = len(self.bytes)
+            # Everything is drawn anew, so that no text is written in part.
+            self.key("\x0c")
+            pause = time.monotonic() + 0.1
+            while time.monotonic() < pause:
+                self.read(0.01)
+            if b"authority" in self.bytes[start:] and b"E4" in self.bytes[start:]:
+                return
+            if time.monotonic() > end:
+                fail(f"the search does not end; there was {self.bytes[-3000:]!r}")
+
     def close(self):
         os.close(self.terminal)
         return os.waitstatus_to_exitcode(os.waitpid(self.process, 0)[1])
@@ -199,7 +214,7 @@ def check_nothing_left(program, after):
 
 def check_session(line, folder):
     """Steps through equilibria and scenarios, and saves the table."""
-    line.wait_for("E4")
+    line.wait_until_done()
     for key in ("n", "n", "p", "f", "b", "h", "h", "\x1b[B"):
         line.key(key)
     saved = folder / "saved.csv"
@@ -221,7 +236,7 @@ def save(line, path):
 def check_broken_save(folder, port, command, whole, delay):
     """The line breaks about when a table is saved: it is there as a whole, or not at all."""
     line = Line(folder, port, command)
-    line.wait_for("E4")
+    line.wait_until_done()
     last = folder / f"last-{delay}.csv"
     save(line, last)
     end = time.monotonic() + delay
