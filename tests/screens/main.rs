@@ -8,6 +8,7 @@ mod interactions;
 mod kept;
 mod knock;
 mod looks;
+mod readme;
 mod skeleton;
 mod texts;
 mod values;

@@ -38,8 +38,8 @@ impl Outside {
         Self { labour, events, memory, errands: Some(errands), thread, watch: None }
     }
 
-    pub(super) fn awaits_quick(&self) -> bool {
-        self.labour.awaits_quick()
+    pub(super) fn awaits(&self, moment: Duration) -> bool {
+        self.labour.awaits(moment)
     }
 
     pub(super) fn answered(&mut self, id: JobId) {

@@ -33,7 +33,14 @@ pub(super) struct Labour {
     slow: Sender<Order>,
     quick: Sender<Order>,
     between: Sender<Order>,
-    flags: HashMap<JobId, (Arc<AtomicBool>, bool)>,
+    flags: HashMap<JobId, Flag>,
+}
+
+/// How a job is told to stop, and whether its answer is worth a moment's patience.
+struct Flag {
+    stop: Arc<AtomicBool>,
+    is_quick: bool,
+    asked: Instant,
 }
 
 impl Labour {
@@ -64,14 +71,14 @@ impl Labour {
             Task::Prepare(..) | Task::Paint(_) | Task::Follow { .. } | Task::Run(_) => &self.quick,
         };
         let is_quick = !matches!(task, Task::Read(..) | Task::Solve { .. });
-        self.flags.insert(id, (Arc::clone(&stop), is_quick));
+        self.flags.insert(id, Flag { stop: Arc::clone(&stop), is_quick, asked: Instant::now() });
         let _ = to.send(Order { id, task, stop });
     }
 
     /// A job is to end soon.
     pub(super) fn stop(&mut self, id: JobId) {
-        if let Some((flag, _)) = self.flags.get(&id) {
-            flag.store(true, Ordering::Relaxed);
+        if let Some(flag) = self.flags.get(&id) {
+            flag.stop.store(true, Ordering::Relaxed);
         }
     }
 
@@ -80,9 +87,11 @@ impl Labour {
         self.flags.remove(&id);
     }
 
-    /// Whether something quick is under way.
-    pub(super) fn awaits_quick(&self) -> bool {
-        self.flags.values().any(|(stop, is_quick)| *is_quick && !stop.load(Ordering::Relaxed))
+    /// Whether something is under way that may be done in a moment: what is quick, and searches for as long as that, since most
+    /// take no longer.
+    pub(super) fn awaits(&self, moment: Duration) -> bool {
+        let may_come = |flag: &Flag| flag.is_quick || flag.asked.elapsed() < moment;
+        self.flags.values().any(|flag| may_come(flag) && !flag.stop.load(Ordering::Relaxed))
     }
 }
 

@@ -147,7 +147,7 @@ impl Interface {
     fn drain(&mut self, events: &Receiver<Event>) -> Option<End> {
         let until = Instant::now() + PATIENCE;
         loop {
-            let event = if self.outside.awaits_quick() {
+            let event = if self.outside.awaits(PATIENCE) {
                 match events.recv_timeout(until.saturating_duration_since(Instant::now())) {
                     Ok(event) => event,
                     Err(RecvTimeoutError::Timeout) => return None,
