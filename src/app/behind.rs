@@ -5,7 +5,7 @@
 
 use super::study::Slot;
 use super::wants::naming;
-use super::{Answer, App, Screen, Source, Study, beside};
+use super::{Answer, App, Screen, Source, Study, beside, interactions, knock};
 use crate::diag::SourceId;
 use crate::model::ParameterId;
 use crate::report::compare::{self, Comparison};
@@ -15,7 +15,11 @@ use crate::report::table::{Command, Form, Limits, Names, Page, Scene, Table, wri
 /// Columns of a text that is written to a file.
 const WIDTH: usize = 80;
 
-/// The table behind the present screen.
+/// Said where what is shown is not known yet.
+const WAIT: &str = "it is still being worked out; write it when that is done";
+
+/// The table behind the present screen. Of a knock and of interactions a text and a CSV have what the screen shows, the other
+/// forms the table.
 ///
 /// # Errors
 ///
@@ -24,10 +28,18 @@ pub fn behind(app: &App, form: Form) -> Result<String, String> {
     match (app.screen, &app.study) {
         (Screen::Chooser, _) | (_, None) => Err("no model is open".to_owned()),
         (Screen::SideBySide, Some(study)) => side_by_side(app, study, form),
+        (Screen::Interactions, Some(study)) => match form {
+            Form::Text => interactions::text(app).ok_or_else(|| WAIT.to_owned()),
+            Form::Csv => interactions::csv(app).ok_or_else(|| "there is no linear part here".to_owned()),
+            _ => table(app, study, form),
+        },
+        (Screen::Knock, Some(study)) => match form {
+            Form::Text => knock::text(app).ok_or_else(|| WAIT.to_owned()),
+            Form::Csv => knock::csv(app).ok_or_else(|| WAIT.to_owned()),
+            _ => table(app, study, form),
+        },
         // What these screens say of equilibria, the table says in more columns.
-        (Screen::Equilibria | Screen::Values | Screen::Interactions | Screen::Knock, Some(study)) => {
-            table(app, study, form)
-        }
+        (Screen::Equilibria | Screen::Values, Some(study)) => table(app, study, form),
     }
 }
 
@@ -160,7 +172,7 @@ fn side_by_side(app: &App, study: &Study, form: Form) -> Result<String, String> 
 
 /// What was found in a slot, as of the scenario of the file that it shows.
 fn scene(study: &Study, slot: &Slot) -> Result<Scene, String> {
-    let found = slot.found.as_ref().filter(|_| slot.is_fresh());
+    let found = slot.found.as_ref().filter(|_| study.is_of_now(slot));
     let (_, scene) =
         found.ok_or_else(|| format!("\"{}\" is being searched; write it when that is done", slot.name()))?;
     let scenario = if slot.world == study.world { slot.scenario } else { study.tried.now.base };

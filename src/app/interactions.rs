@@ -7,7 +7,7 @@ use super::study::Selected;
 use super::{App, Study};
 use crate::report::interactions::{self, Effects, Interactions, Who, sentences, signs, visible};
 use crate::report::sketch::{self, Style};
-use crate::report::table::CAUTION;
+use crate::report::table::{CAUTION, Page};
 
 /// What is looked at.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -114,31 +114,35 @@ pub fn words(selected: &Selected<'_>, style: Style) -> Vec<String> {
     sentences(selected.model(), selected.equilibrium, selected.assessed, style)
 }
 
+/// Columns of the sentences that are saved.
+const SAVED_COLUMNS: usize = 80;
+
 /// Both tables of the selected equilibrium as text, for a file; `None` where nothing is selected.
 pub fn text(app: &App) -> Option<String> {
     let study = app.study.as_ref()?;
     let selected = study.selected()?;
-    let mut lines = selected.heading(study, app.style);
-    lines.extend(words(&selected, app.style));
+    let mut lines = selected.heading(study, Style::Unicode);
+    let page = Page { width: SAVED_COLUMNS, style: Style::Unicode, color: false };
+    lines.extend(words(&selected, Style::Unicode).iter().map(|text| page.paragraph("", text, 0)));
     for effects in [Effects::Direct, Effects::Net] {
         lines.push(String::new());
         match table(study, effects)? {
             Ok(table) => {
-                lines.push(interactions::text(&table, selected.model(), app.style).trim_end().to_owned());
+                lines.push(interactions::text(&table, selected.model(), Style::Unicode).trim_end().to_owned());
                 lines.push(said(&signs(&[&table])));
             }
             Err(reason) => lines.push(reason.to_owned()),
         }
     }
-    lines.extend([String::new(), CAUTION.to_owned()]);
-    Some(lines.iter().map(|line| format!("{}\n", line.trim_end())).collect())
+    lines.extend([String::new(), page.paragraph("", CAUTION, 0)]);
+    Some(lines.iter().fold(String::new(), |text, line| text + line.trim_end() + "\n"))
 }
 
 /// Both tables as CSV, one row an effect; `None` where there is none.
 pub fn csv(app: &App) -> Option<String> {
     let study = app.study.as_ref()?;
     let selected = study.selected()?;
-    let of = |effects| Some(interactions::csv(&table(study, effects)?.ok()?, selected.model(), app.style));
+    let of = |effects| Some(interactions::csv(&table(study, effects)?.ok()?, selected.model(), Style::Unicode));
     let direct = of(Effects::Direct)?;
     // One heading for both.
     let net = of(Effects::Net).unwrap_or_default();

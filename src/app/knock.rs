@@ -14,7 +14,7 @@ use super::{App, Study};
 use crate::model::TimeKind;
 use crate::report::course::{self, Course, bands, drawing, horizon, knocked, sentences, signs};
 use crate::report::sketch::{self, Style};
-use crate::report::table::{CAUTION, clean, human};
+use crate::report::table::{CAUTION, Page, clean, human};
 
 /// Who is hit.
 #[derive(Clone, Copy, Debug, Default, PartialEq, Eq)]
@@ -237,13 +237,16 @@ fn could_come_in(study: &Study, selected: &Selected<'_>) -> Option<String> {
     let able: Vec<usize> = rates.filter(|(_, rate)| rate.is_some_and(|rate| rate > 0.0)).map(|(id, _)| id.0).collect();
     let is_on_the_way = matches!(hit(study), Some(Hit::Point)) || able.iter().any(|&i| hit(study) == Some(Hit::One(i)));
     let names = able.iter().filter_map(|&i| selected.model().species.get(i)).map(|one| one.name.as_str());
-    let who = match able.len() {
-        _ if is_on_the_way => return None,
-        0 => return None,
-        1..=MOST_NAMED => names.collect::<Vec<_>>().join(", "),
-        count => format!("{count} species"),
-    };
-    Some(format!("Left out is who could come in: {who}; Tab brings them in one by one."))
+    match able.len() {
+        _ if is_on_the_way => None,
+        0 => None,
+        1 => Some(format!("Left out is {}, though it could come in; Tab brings it in.", names.collect::<String>())),
+        2..=MOST_NAMED => {
+            let names = names.collect::<Vec<_>>().join(", ");
+            Some(format!("Left out are {names}, though they could come in; Tab brings each in."))
+        }
+        count => Some(format!("Left out are {count} species, though they could come in; Tab brings each in.")),
+    }
 }
 
 /// Columns of a drawing that is saved.
@@ -256,20 +259,22 @@ pub fn text(app: &App) -> Option<String> {
     let study = app.study.as_ref()?;
     let selected = study.selected()?;
     let course = known(app, study)?;
-    let mut lines = selected.heading(study, app.style);
-    lines.push(clean(&format!("After a knock: {}.", blow(study)?.at_length()), app.style));
-    lines.extend(words(study, course, app.style));
+    let page = Page { width: SAVED_COLUMNS, style: Style::Unicode, color: false };
+    let mut lines = selected.heading(study, Style::Unicode);
+    let mut said = vec![format!("After a knock: {}.", blow(study)?.at_length())];
+    said.extend(words(study, course, Style::Unicode));
+    lines.extend(said.iter().map(|text| page.paragraph("", text, 0)));
     let all = bands(course, room(app.size))[1];
     let size = sketch::Size { columns: SAVED_COLUMNS, rows: all.max(1) * SAVED_ROWS };
     lines.push(String::new());
-    lines.extend(drawing(course, selected.model(), 0, size, app.style).lines(false));
-    lines.push(super::interactions::said(&signs(course, app.style)));
-    lines.extend([String::new(), CAUTION.to_owned()]);
-    Some(lines.iter().map(|line| format!("{}\n", line.trim_end())).collect())
+    lines.extend(drawing(course, selected.model(), 0, size, Style::Unicode).lines(false));
+    lines.push(super::interactions::said(&signs(course, Style::Unicode)));
+    lines.extend([String::new(), page.paragraph("", CAUTION, 0)]);
+    Some(lines.iter().fold(String::new(), |text, line| text + line.trim_end() + "\n"))
 }
 
 /// The path and its prediction as CSV, one row a time; `None` where they are not known.
 pub fn csv(app: &App) -> Option<String> {
     let study = app.study.as_ref()?;
-    Some(course::csv(known(app, study)?, study.selected()?.model(), app.style))
+    Some(course::csv(known(app, study)?, study.selected()?.model(), Style::Unicode))
 }

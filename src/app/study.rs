@@ -3,6 +3,7 @@
 use std::sync::Arc;
 
 use super::Source;
+use super::behind::set;
 use super::beside::Beside;
 use super::interactions::Interacting;
 use super::knock::Knock;
@@ -234,8 +235,7 @@ impl Study {
 
     /// The slots whose equilibria can be named together: all that are searched in the world that they belong to.
     pub fn nameable(&self) -> Vec<usize> {
-        let is_present = |slot: &Slot| slot.world == self.world || slot.world.edition == self.tried.edition;
-        (0..self.slots.len()).filter(|&k| self.slots[k].is_fresh() && is_present(&self.slots[k])).collect()
+        (0..self.slots.len()).filter(|&k| self.is_of_now(&self.slots[k])).collect()
     }
 
     /// The name of the equilibrium that is selected.
@@ -256,6 +256,9 @@ impl Study {
         self.chosen = self.chosen.min(self.count().saturating_sub(1));
     }
 }
+
+/// What made a text.
+const PROGRAM: &str = concat!("restpoint ", env!("CARGO_PKG_VERSION"));
 
 /// The equilibrium that is selected.
 #[derive(Clone, Copy, Debug)]
@@ -293,10 +296,20 @@ impl<'s> Selected<'s> {
         case.label(self.place, style == Style::Ascii)
     }
 
-    /// What a text about it begins with: model, scenario, equilibrium, each a line, harmless.
+    /// What a text about it begins with: model, scenario, what is set over it, equilibrium, each a line, harmless.
     pub fn heading(&self, study: &Study, style: Style) -> Vec<String> {
         let scenario = self.model().scenarios.get(self.scene.scenario).map_or("", |scenario| &scenario.name);
-        let lines = [self.model().title.value.clone(), format!("Scenario: {scenario}"), self.label(study, style)];
+        let set = set(study, study.current).into_iter();
+        let set = set.filter_map(|(id, value)| Some((&self.model().parameters.get(id.0)?.name, value)));
+        let set: Vec<String> = set.map(|(name, value)| format!("{name} = {value}")).collect();
+        let mut lines = vec![
+            self.model().title.value.clone(),
+            format!("SHA-256: {}", self.world.original.sha256),
+            format!("program: {PROGRAM}"),
+            format!("scenario: {scenario}"),
+        ];
+        lines.extend((!set.is_empty()).then(|| format!("set: {}", set.join(", "))));
+        lines.push(self.label(study, style));
         lines.iter().map(|line| clean(line, style)).collect()
     }
 }

@@ -18,6 +18,7 @@ use notify::event::{AccessKind, AccessMode};
 use notify::{Config, ErrorKind, Event, EventKind, RecommendedWatcher, RecursiveMode, Watcher};
 
 use super::files::{MODEL_LIMIT, read_ordinary, sha256};
+use crate::diag::cleanse::cleanse;
 use crate::model::Original;
 
 /// How long nothing must happen before a change counts: editors write in several steps.
@@ -112,7 +113,8 @@ fn begin(
         // Without the model's own folder there is no watch; without a table's there is half a one.
         Some((file, error)) if file == model => return Err(error),
         Some((table, _)) => {
-            let table = table.display();
+            let table = table.display().to_string();
+            let table = cleanse(&table);
             Some(format!("changes of {table} are not noticed; read the model again by hand after one"))
         }
         None => remark(&model),

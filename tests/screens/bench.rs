@@ -10,7 +10,7 @@ use std::collections::VecDeque;
 use std::path::{Path, PathBuf};
 use std::rc::Rc;
 
-use restpoint::app::{App, Depth, Effect, JobId, Key, Msg, Size, Source, Task, update};
+use restpoint::app::{App, Depth, Effect, JobId, Key, Msg, Size, Source, Task, Written, update};
 use restpoint::report::sketch::Style;
 use restpoint::shell::errands::Errands;
 use restpoint::shell::memory::Memory;
@@ -24,6 +24,8 @@ pub(crate) struct Bench {
     pub(crate) app: App,
     /// What was asked of the outside and is no task, the last at the end; [`Bench::taken`] empties it.
     pub(crate) asked: Vec<Effect>,
+    /// Whether files may be written; else every one is refused.
+    pub(crate) writes: bool,
     errands: Errands,
     memory: Memory,
     /// Where what is kept between runs lies.
@@ -50,7 +52,7 @@ impl Bench {
         let memory = Memory::at(state.path().to_path_buf());
         let errands = Errands::new(memory.clone());
         let (asked, waiting) = (Vec::new(), VecDeque::new());
-        Self { app, asked, errands, memory, state: state, waiting, is_held: false, folder: None }
+        Self { app, asked, writes: true, errands, memory, state: state, waiting, is_held: false, folder: None }
     }
 
     /// The program is left and started again: nothing is known but what was kept.
@@ -132,6 +134,9 @@ impl Bench {
         self.asked.push(effect.clone());
         let mut answers = Vec::new();
         match effect {
+            Effect::Write { .. } | Effect::WriteScreen { .. } | Effect::Record { .. } if !self.writes => {
+                answers.push(Msg::Written(Written::Failed("nothing may be written here".to_owned())));
+            }
             Effect::WriteScreen { path, replace } => {
                 let text = self.text();
                 answers.extend(self.errands.run(Effect::Write { path, text, replace }));
@@ -148,6 +153,14 @@ impl Bench {
     /// Puts off tasks from now on.
     pub(crate) fn hold(&mut self) {
         self.is_held = true;
+    }
+
+    /// Does the task that was put off first; what it leads to is put off too.
+    pub(crate) fn work_once(&mut self) {
+        if let Some((id, task)) = self.waiting.pop_front() {
+            let effects = self.done(id, task);
+            self.perform(effects);
+        }
     }
 
     /// Does the tasks that were put off, and no longer puts off any.

@@ -4,7 +4,7 @@ use restpoint::app::interactions::{csv, text};
 use std::path::{Path, PathBuf};
 
 use crate::bench::{Bench, SIZES};
-use crate::texts::looks_as;
+use crate::texts::{looks_as, written};
 use unicode_width::UnicodeWidthStr;
 
 fn words(bench: &Bench) -> String {
@@ -138,11 +138,13 @@ fn what_is_saved_has_both_tables() {
     );
     bench.press("i<End>");
     let saved = text(&bench.app).unwrap();
-    for part in ["Scenario: base\n", "Direct effects", "-4.000", "Net effects", "+0.2500", "One more of C", "authority"]
+    for part in ["scenario: base\n", "Direct effects", "-4.000", "Net effects", "+0.2500", "One more of C", "authority"]
     {
         assert!(saved.contains(part), "no {part} in\n{saved}");
     }
+    assert_eq!(written(&mut bench, "who.txt"), saved);
     let saved = csv(&bench.app).unwrap();
+    assert_eq!(written(&mut bench, "who.csv"), saved);
     let rows: Vec<&str> = saved.lines().collect();
     assert_eq!(rows.len(), 9, "{saved}");
     assert_eq!(rows[0], "effects,answer of,press on,number,sign,sign is");

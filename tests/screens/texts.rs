@@ -1,4 +1,4 @@
-//! Screens against the texts that they are to show.
+//! Screens against the texts that they are to show, and what they write.
 
 use std::fs;
 use std::path::Path;
@@ -12,4 +12,15 @@ pub(crate) fn looks_as(bench: &Bench, name: &str) {
     let expected = fs::read_to_string(&path).unwrap_or_default();
     let shown = bench.text();
     assert!(shown == expected, "{name} is not as expected, but\n{shown}");
+}
+
+/// Writes what is behind the screen to a file of that name in the bench's folder; what is then in it.
+#[track_caller]
+pub(crate) fn written(bench: &mut Bench, name: &str) -> String {
+    let path = bench.folder().join(name);
+    bench.press("w");
+    bench.paste(path.to_str().unwrap());
+    bench.press("<Enter>");
+    bench.shows(&["written to "]);
+    fs::read_to_string(path).unwrap()
 }

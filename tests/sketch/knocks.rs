@@ -260,7 +260,7 @@ fn signs_are_told_without_colour() {
     for ink in [Ink::Proved, Ink::Numerical, Ink::Undecided, Ink::Warning] {
         assert!(inks.contains(&ink), "{ink:?}");
     }
-    let signs: Vec<String> = interactions::signs(&table).into_iter().map(|(sign, _)| sign).collect();
+    let signs: Vec<String> = interactions::signs(&[&table]).into_iter().map(|(sign, _)| sign).collect();
     assert_eq!(signs, ["+", "-", "0", "?", "( )"]);
 }
 

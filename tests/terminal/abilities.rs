@@ -41,11 +41,17 @@ impl Used {
             return;
         }
         self.letters.insert(letter);
-        let numbers: Vec<&str> = parameters.split(';').collect();
-        if letter == 'm' {
-            self.colours[0] |= numbers.iter().any(|number| ["31", "32", "33", "34", "35", "36"].contains(number));
-            self.colours[1] |= parameters.contains("38;5;");
-            self.colours[2] |= parameters.contains("38;2;");
+        let mut numbers = parameters.split(';').filter(|_| letter == 'm');
+        while let Some(number) = numbers.next() {
+            match number {
+                "31" | "32" | "33" | "34" | "35" | "36" => self.colours[0] = true,
+                // One of 256, or red, green and blue follow.
+                "38" => match numbers.next() {
+                    Some("5") => self.colours[1] = numbers.next().is_some(),
+                    _ => self.colours[2] = numbers.by_ref().take(3).count() == 3,
+                },
+                _ => {}
+            }
         }
     }
 }
@@ -57,7 +63,7 @@ fn used(environment: &[(&str, &str)], options: &[&str]) -> Used {
     session.wait_until_done();
     session.keys("nfm");
     session.keys("h");
-    session.wait_for_text("Keys here");
+    session.wait_for_text("Keys and signs");
     session.keys("q");
     assert_eq!(session.code(), 0);
     session.wait_for("the cursor", |screen| !screen.hide_cursor());

@@ -8,18 +8,20 @@ use vt100::Screen;
 use super::MODEL;
 use super::session::{LIMIT, Session, Setup, computed};
 
-/// A lasting search: six species that saturate each other, on which nothing can be decided soon.
+/// A lasting search: seven species that are all limited by the same, so that whole surfaces of states stay as they are.
 const LONG: &str = "\
 title: Long
 time: yr
-species: {A: {upper: 100}, B: {upper: 100}, C: {upper: 100}, D: {upper: 100}, F: {upper: 100}, G: {upper: 100}}
+species: {A: {upper: 99}, B: {upper: 99}, C: {upper: 99}, D: {upper: 99}, F: {upper: 99}, G: {upper: 99}, H: {upper: 99}}
+shorthand: {left: 7 - A/(1+A/9) - B/(1+B/9) - C/(1+C/9) - D/(1+D/9) - F/(1+F/9) - G/(1+G/9) - H/(1+H/9)}
 change:
-  A: A*(1 - A/50 - B/(1+A+C) - D/(2+B))
-  B: B*(A/(1+A+C) - 0.3 - F/(3+B+G))
-  C: C*(0.9 - C/40 - D/(1+C+A) + tanh(A-B)/9)
-  D: D*(C/(1+C+A) - 0.2 - G/(2+D))
-  F: F*(B/(3+B+G) - 0.1 - F/70 - A/(9+D))
-  G: G*(0.3 - G/30 + D/(2+D) - C/(4+F))
+  A: A*left*(1 + B)
+  B: B*left*(2 + C)
+  C: C*left*(3 + D)
+  D: D*left*(4 + F)
+  F: F*left*(5 + G)
+  G: G*left*(6 + H)
+  H: H*left*(7 + A)
 ";
 
 fn is_given_back(screen: &Screen) -> bool {

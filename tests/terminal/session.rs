@@ -3,6 +3,8 @@
 //! Nothing waits for a fixed time: [`Session::wait_for`] looks at the screen after everything that comes, up to a limit that
 //! only a machine that has stopped can miss.
 
+#![allow(dead_code, reason = "the benchmark of the interface uses a part")]
+
 use std::fs;
 use std::io::{Read, Write};
 use std::num::NonZeroU16;
@@ -163,6 +165,26 @@ impl Session {
         assert!(!waited.timed_out(), "nothing came after {bytes} bytes");
     }
 
+    /// Types, and waits for all that comes of it: when the last of it came and how many bytes it was; `None` where nothing
+    /// came. It is over when nothing has come for as long as `quiet`.
+    pub fn answer(&mut self, keys: &str, quiet: Duration) -> Option<(Duration, usize)> {
+        let before = self.last().1;
+        let start = Instant::now();
+        self.keys(keys);
+        let (arrived, changed) = &*self.arrived;
+        let mut guard = arrived.lock().unwrap();
+        loop {
+            let count = guard.bytes.len();
+            // A machine that is busy with other things may be late with the first byte.
+            let patience = if count == before { 5 * quiet } else { quiet };
+            let (later, _) = changed.wait_timeout_while(guard, patience, |now| now.bytes.len() == count).unwrap();
+            guard = later;
+            if guard.bytes.len() == count {
+                return (count > before).then(|| (guard.last - start, count - before));
+            }
+        }
+    }
+
     /// Looks at the screen.
     pub fn look<T>(&self, at: impl FnOnce(&Screen) -> T) -> T {
         at(self.arrived.0.lock().unwrap().screen.screen())
@@ -239,8 +261,9 @@ impl Drop for Session {
 fn follow(mut from: Box<dyn Read + Send>, arrived: &Shared) {
     let mut bytes = [0; 65536];
     while let Ok(count @ 1..) = from.read(&mut bytes) {
+        let now = Instant::now();
         let mut state = arrived.0.lock().unwrap();
-        state.last = Instant::now();
+        state.last = now;
         state.bytes.extend_from_slice(&bytes[..count]);
         state.screen.process(&bytes[..count]);
         arrived.1.notify_all();

@@ -23,7 +23,7 @@ fn check_walk(columns: u16, rows: u16) {
     session.keys("b");
     session.wait_for("the first scenario", |screen| screen.rows(0, columns).next().as_deref() == Some(title.as_str()));
     session.keys("h");
-    session.wait_for_text("Keys here");
+    session.wait_for_text("Keys and signs");
     session.keys("\x1b");
     session.wait_until_done();
     // Byte by byte, as a serial line delivers it.

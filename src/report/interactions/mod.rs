@@ -117,9 +117,9 @@ pub fn interactions(
         effects,
         present: species.iter().map(|&i| equilibrium.has(i)).collect(),
         entries: pairs
-            .map(|k| match noise(k) {
-                true => Effect { number: numbers[k], sign: Sign::Undecided, proved: false },
-                false => effect(numbers[k], bounds.get(k)),
+            .map(|k| {
+                let effect = effect(numbers[k], bounds.get(k));
+                if noise(k) { Effect { sign: Sign::Undecided, ..effect } } else { effect }
             })
             .collect(),
         nearly_singular: effects == Effects::Net && net.is_some_and(|net| net.nearly_singular),

@@ -2,7 +2,7 @@
 //!
 //! The numbers are cells of the one list of columns, in an order of their own: what a reader with little room needs first.
 
-use super::columns::{Glyphs, columns};
+use super::columns::{Glyphs, Unit, columns};
 use super::number::human;
 use super::{Limits, Names, Row, Scene, Solved, Table, paths, words};
 use crate::analysis::linearise::{Linearisation, Verdict};
@@ -129,8 +129,15 @@ fn facts_of(row: &Row<'_>, id: &str, glyphs: Glyphs) -> Vec<Fact> {
     pairs
         .map(|(head, cell)| {
             let label = if head.title.is_empty() { column.id.replace('_', " ") } else { head.title };
-            let unit = if head.unit.is_empty() { String::new() } else { format!(" {}", head.unit) };
-            Fact { label, value: format!("{}{unit}", cell.text()), ink: ink(cell.text()) }
+            let ink = ink(cell.text());
+            // What says of a cell more than its unit belongs to the name.
+            match head.unit {
+                unit if unit.is_empty() => Fact { label, value: cell.text().to_owned(), ink },
+                unit if column.unit == Unit::None || unit.contains(", ") => {
+                    Fact { label: format!("{label} ({unit})"), value: cell.text().to_owned(), ink }
+                }
+                unit => Fact { label, value: format!("{} {unit}", cell.text()), ink },
+            }
         })
         .collect()
 }

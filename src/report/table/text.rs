@@ -37,7 +37,8 @@ impl Page {
         clean(text, self.style)
     }
 
-    pub(in crate::report) fn paragraph(&self, first: &str, text: &str, indent: usize) -> String {
+    /// Words in lines of the page's width, harmless, the first after a text of its own, the others indented.
+    pub fn paragraph(&self, first: &str, text: &str, indent: usize) -> String {
         let words: Vec<String> = text.split_whitespace().map(|word| self.clean(word)).collect();
         paragraph(first, &words.join(" "), indent, self.width)
     }

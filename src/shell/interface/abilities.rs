@@ -53,10 +53,11 @@ impl Abilities {
 
 fn abilities(wish: Wish, environment: &Environment) -> Option<Abilities> {
     let Environment { term, colorterm, no_color, locale } = environment;
-    if term.is_empty() || term == "dumb" {
+    // What came before the VT100 places its cursor in other ways.
+    if ["", "dumb", "unknown", "vt05", "vt50", "vt52"].contains(&term.as_str()) {
         return None;
     }
-    let is_old = term.starts_with("vt1") || term.starts_with("vt2") || term.starts_with("vt3");
+    let is_old = term.starts_with("vt");
     let is_console = term == "linux" || is_old;
     let locale = locale.to_lowercase();
     let is_utf8 = locale.contains("utf-8") || locale.contains("utf8");
@@ -74,9 +75,8 @@ fn abilities(wish: Wish, environment: &Environment) -> Option<Abilities> {
     let depth = match wish.color {
         Some(false) => Depth::None,
         Some(true) if shown == Depth::None => Depth::Eight,
-        Some(true) => shown,
         None if *no_color => Depth::None,
-        None => shown,
+        Some(true) | None => shown,
     };
     Some(Abilities { style, depth, has_second_screen: !is_console })
 }
@@ -100,6 +100,7 @@ mod tests {
         let (unicode, ascii) = (Style::Unicode, Style::Ascii);
         check(["dumb", "", "", "en_GB.UTF-8"], None);
         check(["", "", "", "C"], None);
+        check(["vt52", "", "", "C"], None);
         check(["xterm", "", "", "en_GB.UTF-8"], Some((unicode, Depth::Eight, true)));
         check(["xterm-256color", "", "", "C.utf8"], Some((unicode, Depth::Many, true)));
         check(["xterm-256color", "truecolor", "", "de_DE.UTF-8"], Some((unicode, Depth::Any, true)));
@@ -108,6 +109,7 @@ mod tests {
         check(["tmux-256color", "", "", "POSIX"], Some((ascii, Depth::Many, true)));
         check(["linux", "", "", "en_GB.UTF-8"], Some((ascii, Depth::Eight, false)));
         check(["vt100", "", "", "en_GB.UTF-8"], Some((ascii, Depth::None, false)));
+        check(["vt420", "", "", "C.UTF-8"], Some((ascii, Depth::None, false)));
         check(["vt220", "truecolor", "", ""], Some((ascii, Depth::None, false)));
     }
 

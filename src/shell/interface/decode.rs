@@ -152,7 +152,7 @@ fn named(parameters: &[u8], letter: u8) -> Option<Key> {
     if parameters.len() > LONGEST_SEQUENCE {
         return None;
     }
-    let mut numbers = from_utf8(parameters).ok()?.split(';').map(|number| number.parse::<u16>());
+    let mut numbers = from_utf8(parameters).ok()?.split(';').map(str::parse::<u16>);
     let first = numbers.next().and_then(Result::ok);
     // One more than the sum of the modifiers, of which Shift is 1.
     if let Some(modifier) = numbers.next()

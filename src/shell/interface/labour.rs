@@ -34,7 +34,7 @@ pub(super) struct Labour {
 
 impl Labour {
     /// Starts them; `threads` is how many a search may use.
-    pub(super) fn start(threads: Threads, events: Events) -> Self {
+    pub(super) fn start(threads: Threads, events: &Events) -> Self {
         let begin = |name: &str| {
             let (sender, orders) = channel();
             let events = events.clone();

@@ -101,7 +101,7 @@ pub fn run(start: Start) -> Result<End> {
         app.edition += 1;
         app.reading = Some((source, app.edition));
     }
-    let labour = Labour::start(start.threads, sender.clone());
+    let labour = Labour::start(start.threads, &sender);
     let mut interface = Interface {
         app,
         painter: Painter::new(start.abilities.style, start.abilities.depth),
@@ -110,6 +110,10 @@ pub fn run(start: Start) -> Result<End> {
     };
     let end = interface.go(&events);
     drop(screen);
+    // What is still to be written is written; the user sees the shell meanwhile.
+    let whole = ending::Whole::begin();
+    drop(interface);
+    drop(whole);
     Ok(end)
 }
 

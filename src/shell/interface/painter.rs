@@ -72,14 +72,8 @@ impl Painter {
         self.cursor = Cursor::Unknown;
         let columns = usize::from(frame.area.width).max(1);
         self.tame(&mut frame, columns);
-        let before = match self.shown.take().filter(|before| before.area == frame.area) {
-            Some(before) => before,
-            None => {
-                self.out.extend_from_slice(ERASE_ALL);
-                self.cursor = Cursor::At(0, 0);
-                Buffer::empty(frame.area)
-            }
-        };
+        let known = self.shown.take().filter(|before| before.area == frame.area);
+        let before = known.unwrap_or_else(|| self.erase_all(&frame));
         let lines = before.content.chunks(columns).zip(frame.content.chunks(columns));
         for (y, (old, new)) in (0..).zip(lines) {
             if old != new {
@@ -93,6 +87,13 @@ impl Painter {
         }
         to.write_all(&self.out)?;
         to.flush()
+    }
+
+    /// Takes everything away; what is shown then.
+    fn erase_all(&mut self, frame: &Buffer) -> Buffer {
+        self.out.extend_from_slice(ERASE_ALL);
+        self.cursor = Cursor::At(0, 0);
+        Buffer::empty(frame.area)
     }
 
     fn line(&mut self, old: &[Cell], new: &[Cell], y: u16) {
@@ -169,14 +170,14 @@ impl Painter {
     fn tame(&self, frame: &mut Buffer, columns: usize) {
         for line in frame.content.chunks_mut(columns) {
             let mut covered = 0;
-            for x in 0..line.len() {
+            for (x, cell) in line.iter_mut().enumerate() {
                 if covered > 0 {
                     covered -= 1;
-                    line[x] = Cell::new("");
+                    *cell = Cell::new("");
                     continue;
                 }
-                self.tame_cell(&mut line[x], columns - x);
-                covered = line[x].symbol().width().max(1) - 1;
+                self.tame_cell(cell, columns - x);
+                covered = cell.symbol().width().max(1) - 1;
             }
         }
     }

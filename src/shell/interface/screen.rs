@@ -21,6 +21,7 @@ use signal_hook::consts::SIGSTOP;
 use signal_hook::low_level::raise;
 
 use super::Abilities;
+use super::signals::goes_on;
 use crate::app::Size;
 use crate::shell::terminal::{COLUMNS, ROWS};
 
@@ -149,7 +150,8 @@ pub(super) fn pause() -> io::Result<()> {
         return Ok(());
     }
     give_back();
-    raise(SIGSTOP)
+    // A shell that is quick may have let us go on before we came to stop.
+    if goes_on() { Ok(()) } else { raise(SIGSTOP) }
 }
 
 /// Whether a shell with job control started us: it puts each job into a group of its own. Without, as when a login runs the
