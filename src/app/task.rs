@@ -33,8 +33,8 @@ pub enum Task {
         world: Arc<World>,
         /// What was found, in the order of the scenarios.
         scenes: Vec<Found>,
-        /// Where the last is one of tried values, the scenario of the file that they are set over: it is named after that one.
-        tried_over: Option<usize>,
+        /// Where the last of them is of tried values: the place of the scenario that they are set over.
+        over: Option<usize>,
         /// Seconds that it may take.
         budget: f64,
     },

@@ -72,9 +72,11 @@ pub(super) fn naming(app: &App, study: &Study) -> Option<Task> {
     let scenes: Vec<Found> = slots.iter().filter_map(|slot| found(slot)).collect();
     // The world of the tried values has the scenarios of the file as well.
     let world = slots.last().map_or(&study.world, |slot| &slot.world);
-    let is_tried = slots.last().is_some_and(|slot| slot.world != study.world);
-    let tried_over = is_tried.then_some(study.tried.now.base);
-    (!scenes.is_empty()).then(|| Task::Name { world: Arc::clone(world), scenes, tried_over, budget: app.budget })
+    let nameable = study.nameable();
+    let has_tried = study.tried_slot().is_some_and(|tried| nameable.last() == Some(&tried));
+    let base = study.base_slot().filter(|_| has_tried);
+    let over = base.and_then(|base| nameable.iter().position(|&slot| slot == base));
+    (!scenes.is_empty()).then(|| Task::Name { world: Arc::clone(world), scenes, over, budget: app.budget })
 }
 
 fn search(slot: &Slot, budget: f64) -> Task {

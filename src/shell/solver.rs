@@ -30,23 +30,13 @@ pub fn names<'s>(ways: &mut Ways, scenes: impl IntoIterator<Item = &'s Scene>, s
     Names::new(&identify(ways, &all_found, stop))
 }
 
-/// Names the equilibria of a file's scenarios, and those of tried values after the scenario that they are set over.
-pub fn names_with_tried(
-    ways: &mut Ways,
-    file: &[&Scene],
-    tried: &Scene,
-    base: usize,
-    stop: &dyn Fn() -> bool,
-) -> Names {
-    let mut names = names(ways, file.iter().copied(), stop);
-    let over = file.iter().position(|scene| scene.scenario == base);
-    let ends = over.and_then(|over| Some((over, [found(file[over])?, found(tried)?])));
-    match ends {
-        Some((over, ends)) => names.add_after(over, ends[1].list.len(), &ways.passage(ends, stop)),
-        // Nothing to be named after.
-        None => names.add_after(0, found(tried).map_or(0, |tried| tried.list.len()), &Passage::default()),
-    }
-    names
+/// The same for scenarios and one more, whose values are set over that at place `base`: what can be followed from there
+/// keeps its name, and no name of the others depends on what is tried.
+pub fn names_over(ways: &mut Ways, scenes: &[&Scene], base: usize, tried: &Scene, stop: &dyn Fn() -> bool) -> Names {
+    let named = names(ways, scenes.iter().copied(), stop);
+    let ends = scenes.get(base).and_then(|base| found(base)).zip(found(tried));
+    let passage = ends.map(|(base, tried)| ways.passage([base, tried], stop)).unwrap_or_default();
+    named.with_one_over(base, &passage, found(tried).map_or(0, |tried| tried.list.len()))
 }
 
 /// From the first scenario with a list to each other one that has a list; `None` for the rest.

@@ -19,7 +19,7 @@ use crate::report::table::{Names, Scene};
 use super::clock::Deadline;
 use super::files::from_home;
 use super::models::{COMPILED, Reading, compiled, read};
-use super::solver::{BOXES, names, names_with_tried, passages, scene};
+use super::solver::{BOXES, names, names_over, passages, scene};
 use super::workers::Threads;
 
 /// What a task is done with.
@@ -47,13 +47,13 @@ pub fn perform(task: Task, means: &Means<'_>) -> Answer {
             };
             Answer::Solved(Box::new(scene(&world.original.model, &world.prepared, scenario, &budget)))
         }
-        Task::Name { world, scenes, tried_over, budget } => {
+        Task::Name { world, scenes, over, budget } => {
             let deadline = Deadline::after(budget);
             let stop = || (means.stop)() || deadline.is_past();
             let mut ways = Ways::new(&world.original.model, &world.prepared);
             let scenes: Vec<&Scene> = scenes.iter().map(|found| &*found.0).collect();
-            Answer::Named(Arc::new(match (tried_over, scenes.split_last()) {
-                (Some(base), Some((tried, file))) => names_with_tried(&mut ways, file, tried, base, &stop),
+            Answer::Named(Arc::new(match (over, scenes.split_last()) {
+                (Some(base), Some((tried, of_file))) => names_over(&mut ways, of_file, base, tried, &stop),
                 _ => names(&mut ways, scenes, &stop),
             }))
         }

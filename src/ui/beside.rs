@@ -2,6 +2,7 @@
 
 use super::paint::{Page, more};
 use super::sketch::Shown;
+use super::sure::Sure;
 use crate::analysis::equilibria::Equilibrium;
 use crate::app::beside::{Parts, compared, ids, parts, shown, task};
 use crate::app::geometry::Area;
@@ -139,7 +140,7 @@ fn numbers(comparison: &Comparison<'_>, chosen: &Identity, page: &mut Page<'_>, 
     let labels = Area { columns: parts.labels() - 1, ..parts.numbers };
     page.text(labels, [0, 0], &format!("{} type", chosen.id), Ink::Faint);
     for (scene, entry) in chosen.entries.iter().enumerate() {
-        let (text, ink) = kind(comparison, scene, entry);
+        let (text, ink) = kind(comparison, scene, entry, page);
         put(page, parts, scene, 0, &text, ink);
     }
     let mut row = 1 + leads(comparison, page, parts);
@@ -197,15 +198,14 @@ fn quantity(
     }
 }
 
-fn kind(comparison: &Comparison<'_>, scene: usize, entry: &Entry) -> (String, Ink) {
-    let linear = entry
-        .place
-        .zip(comparison.solved(scene))
-        .and_then(|(place, solved)| solved.assessment.equilibria.get(place).and_then(|one| one.linear.as_ref().ok()));
-    let Some(linear) = linear else { return (String::new(), Ink::Plain) };
-    let sure = if linear.kind_proven { "proved" } else { "numerical" };
+fn kind(comparison: &Comparison<'_>, scene: usize, entry: &Entry, page: &Page<'_>) -> (String, Ink) {
+    let Some((place, solved)) = entry.place.zip(comparison.solved(scene)) else { return (String::new(), Ink::Plain) };
+    let linear = solved.assessment.equilibria.get(place).and_then(|one| one.linear.as_ref().ok());
+    let Some(linear) = linear else { return ("no linear part".to_owned(), Ink::Plain) };
+    let is_there = solved.equilibria.list.get(place).is_some_and(|found| found.proven);
+    let (sure, _) = Sure::of(is_there, Some(linear)).mark(page);
     let ink = if entry.type_changed == Some(true) { Ink::Changed } else { Ink::Plain };
-    (format!("{}, {sure}", kinds::of(linear.kind).word), ink)
+    (format!("{} {sure}", kinds::of(linear.kind).word), ink)
 }
 
 fn put(page: &mut Page<'_>, parts: &Parts, scene: usize, row: u16, text: &str, ink: Ink) {

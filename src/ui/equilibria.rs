@@ -4,7 +4,7 @@ use unicode_width::UnicodeWidthStr;
 
 use super::paint::{Page, more};
 use super::sketch::Shown;
-use crate::analysis::linearise::{Kind, Linearisation};
+use super::sure::Sure;
 use crate::app::geometry::{Area, equilibria, listed};
 use crate::app::{App, Study};
 use crate::model::Model;
@@ -83,40 +83,6 @@ fn legend(page: &mut Page<'_>, area: Area) {
         let (mark, ink) = sure.mark(page);
         column = page.text(area, [column, area.rows - 1], &format!("{mark} "), ink);
         column = page.text(area, [column, area.rows - 1], sure.word(), Ink::Faint) + 1;
-    }
-}
-
-/// How sure an equilibrium and its type are.
-#[derive(Clone, Copy, Debug, PartialEq, Eq)]
-enum Sure {
-    Proved,
-    Numerical,
-    Open,
-}
-
-impl Sure {
-    fn of(is_there: bool, linear: Option<&Linearisation>) -> Self {
-        match linear {
-            Some(linear) if is_there && linear.kind_proven && linear.stable_proven => Self::Proved,
-            Some(linear) if linear.kind != Kind::Undecided => Self::Numerical,
-            _ => Self::Open,
-        }
-    }
-
-    fn mark(self, page: &Page<'_>) -> (char, Ink) {
-        match self {
-            Self::Proved => (page.either('✓', '+'), Ink::Proved),
-            Self::Numerical => (page.either('≈', '#'), Ink::Numerical),
-            Self::Open => ('?', Ink::Undecided),
-        }
-    }
-
-    fn word(self) -> &'static str {
-        match self {
-            Self::Proved => "proved",
-            Self::Numerical => "numerical",
-            Self::Open => "open",
-        }
     }
 }
 

@@ -13,6 +13,7 @@ mod page;
 mod paint;
 mod single;
 mod sketch;
+mod sure;
 mod text;
 mod values;
 

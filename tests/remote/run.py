@@ -164,6 +164,21 @@ class Line:
             if not self.read() or time.monotonic() > end:
                 fail(f"no answer to {keys!r}; there was {self.bytes[-3000:]!r}")
 
+    def wait_until_done(self):
+        """Waits until nothing is searched any more: then the caution stands where the progress stood."""
+        end = time.monotonic() + LIMIT
+        while True:
+            start = len(self.bytes)
+            # Everything is drawn anew, so that no text is written in part.
+            self.key("\x0c")
+            pause = time.monotonic() + 0.1
+            while time.monotonic() < pause:
+                self.read(0.01)
+            if b"authority" in self.bytes[start:] and b"E4" in self.bytes[start:]:
+                return
+            if time.monotonic() > end:
+                fail(f"the search does not end; there was {self.bytes[-3000:]!r}")
+
     def close(self):
         os.close(self.terminal)
         return os.waitstatus_to_exitcode(os.waitpid(self.process, 0)[1])
@@ -199,7 +214,7 @@ def check_nothing_left(program, after):
 
 def check_session(line, folder):
     """Steps through equilibria and scenarios, and saves the table."""
-    line.wait_for("E4")
+    line.wait_until_done()
     for key in ("n", "n", "p", "f", "b", "h", "h", "\x1b[B"):
         line.key(key)
     saved = folder / "saved.csv"
@@ -214,8 +229,30 @@ def check_session(line, folder):
 def save(line, path):
     line.key("w")
     # Whatever is offered is taken away first.
-    os.write(line.terminal, b"\x7f" * 300)
+    os.write(line.terminal, b"\x7f" * 100)
     os.write(line.terminal, f"{path}\r".encode())
+
+
+def check_broken_save(folder, port, command, whole, delay):
+    """The line breaks about when a table is saved: it is there as a whole, or not at all."""
+    line = Line(folder, port, command)
+    line.wait_until_done()
+    last = folder / f"last-{delay}.csv"
+    save(line, last)
+    end = time.monotonic() + delay
+    while time.monotonic() < end:
+        line.read(0.001)
+    line.break_off()
+    start = time.monotonic()
+    # What the program began it ends.
+    wait_until("the end of the program", lambda: not running(folder / "restpoint"), GONE)
+    if last.exists() and len(last.read_text().splitlines()) != len(whole.splitlines()):
+        fail(f"a table was written in part: {last.read_text()[-500:]!r}")
+    left = [path.name for path in folder.iterdir() if "last-" in path.name and path != last and path.suffix != ".csv"]
+    if left:
+        fail(f"parts of a file are left: {left}")
+    found = "a whole table" if last.exists() else "no table"
+    print(f"a line that breaks {delay} s after saving: {found}, nothing left after {time.monotonic() - start:.2f} s")
 
 
 def main():
@@ -228,7 +265,7 @@ def main():
     shutil.copy2(program, own)
     long = folder / "long.yaml"
     long.write_text(LONG)
-    command = f"LANG=C.UTF-8 exec {own}"
+    command = f"LANG=C.UTF-8 XDG_STATE_HOME={folder / 'state'} exec {own}"
     with server(folder) as port:
         line = Line(folder, port, f"{command} {MODEL}")
         whole = check_session(line, folder)
@@ -239,22 +276,14 @@ def main():
             fail("the second screen is left on")
         check_nothing_left(own, "q")
 
-        line = Line(folder, port, f"{command} {MODEL}")
-        line.wait_for("E4")
-        last = folder / "last.csv"
-        save(line, last)
-        line.break_off()
-        check_nothing_left(own, "a line that breaks while a table is saved")
-        if last.exists() and last.read_text().splitlines()[-1:] != whole.splitlines()[-1:]:
-            fail(f"a table was written in part: {last.read_text()[-500:]!r}")
-        left = [path.name for path in folder.iterdir() if path.name.startswith((".last", "last.csv."))]
-        if left:
-            fail(f"parts of a file are left: {left}")
+        for delay in (0.0, 0.1, 0.2, 0.5):
+            check_broken_save(folder, port, f"{command} {MODEL}", whole, delay)
 
         line = Line(folder, port, f"{command} --budget 600 {long}")
         line.wait_for("searching")
         line.break_off()
         check_nothing_left(own, "a line that breaks during a search")
+    own.unlink()
 
 
 if __name__ == "__main__":

@@ -10,6 +10,9 @@ use std::collections::VecDeque;
 use std::path::{Path, PathBuf};
 use std::rc::Rc;
 
+use ratatui::buffer::Buffer;
+use ratatui::layout::Rect;
+use ratatui::style::{Color, Modifier};
 use restpoint::app::{App, Depth, Effect, JobId, Key, Msg, Size, Source, Task, Written, update};
 use restpoint::report::sketch::Style;
 use restpoint::shell::errands::Errands;
@@ -204,6 +207,46 @@ impl Bench {
     /// What is shown.
     pub(crate) fn text(&self) -> String {
         ui::text(&self.app)
+    }
+
+    /// What each run of characters looks like that is not plain: row, columns, colour, attributes.
+    pub(crate) fn looks(&self) -> String {
+        let area = Rect::new(0, 0, self.app.size.columns, self.app.size.rows);
+        let mut buffer = Buffer::empty(area);
+        ui::view(&self.app, &mut buffer);
+        // A blank looks like whatever it stands between.
+        let look = |x: u16, y: u16| {
+            let cell = &buffer[(x, y)];
+            let is_blank = cell.symbol() == " " && !cell.modifier.contains(Modifier::REVERSED);
+            (!is_blank).then_some((cell.fg, cell.modifier))
+        };
+        let mut lines = String::new();
+        for y in 0..area.height {
+            let mut runs: Vec<(u16, u16, (Color, Modifier))> = Vec::new();
+            for x in 0..area.width {
+                match (look(x, y), runs.last_mut()) {
+                    (None, _) => {}
+                    (Some(look), Some((_, end, last))) if *last == look => *end = x,
+                    (Some(look), _) => runs.push((x, x, look)),
+                }
+            }
+            runs.retain(|(.., look)| *look != (Color::Reset, Modifier::empty()));
+            let run = |(from, to, (colour, modifier)): &(u16, u16, (Color, Modifier))| {
+                let colour = if *colour == Color::Reset { String::new() } else { format!(" {colour}") };
+                let modifier = if modifier.is_empty() { String::new() } else { format!(" {modifier:?}") };
+                format!("{from}-{to}{colour}{modifier}")
+            };
+            if !runs.is_empty() {
+                lines += &format!("{y}: {}\n", runs.iter().map(run).collect::<Vec<_>>().join(", "));
+            }
+        }
+        lines
+    }
+
+    /// Colours.
+    pub(crate) fn coloured(mut self) -> Self {
+        self.app.depth = Depth::Many;
+        self
     }
 
     /// A line of what is shown.

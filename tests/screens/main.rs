@@ -7,6 +7,7 @@ mod chooser;
 mod interactions;
 mod kept;
 mod knock;
+mod looks;
 mod skeleton;
 mod texts;
 mod values;

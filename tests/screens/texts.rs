@@ -1,4 +1,5 @@
-//! Screens against the texts that they are to show, and what they write.
+//! Screens against the texts that they are to show, and what they write. `RENEW_SCREENS=1` writes the texts anew instead of
+//! comparing them: read what has changed before it is committed.
 
 use std::fs;
 use std::path::Path;
@@ -9,8 +10,22 @@ use crate::bench::Bench;
 #[track_caller]
 pub(crate) fn looks_as(bench: &Bench, name: &str) {
     let path = Path::new(env!("CARGO_MANIFEST_DIR")).join("tests/files/screens").join(format!("{name}.txt"));
-    let expected = fs::read_to_string(&path).unwrap_or_default();
-    let shown = bench.text();
+    compare(&path, &bench.text(), name);
+}
+
+/// The same with what each run of characters looks like, below the text.
+#[track_caller]
+pub(crate) fn looks_in_colour_as(bench: &Bench, name: &str) {
+    let path = Path::new(env!("CARGO_MANIFEST_DIR")).join("tests/files/screens").join(format!("{name}.txt"));
+    compare(&path, &format!("{}{}", bench.text(), bench.looks()), name);
+}
+
+#[track_caller]
+fn compare(path: &Path, shown: &str, name: &str) {
+    if std::env::var_os("RENEW_SCREENS").is_some() {
+        fs::write(path, shown).unwrap();
+    }
+    let expected = fs::read_to_string(path).unwrap_or_default();
     assert!(shown == expected, "{name} is not as expected, but\n{shown}");
 }
 

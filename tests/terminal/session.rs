@@ -14,6 +14,7 @@ use std::time::{Duration, Instant};
 
 use portable_pty::{Child, CommandBuilder, MasterPty, PtySize, native_pty_system};
 use rustix::process::{Pid, Signal, kill_process};
+use tempfile::TempDir;
 use vt100::Screen;
 
 /// How long anything may take.
@@ -55,15 +56,15 @@ impl Setup {
         self
     }
 
-    fn command(&self) -> CommandBuilder {
+    /// With what is kept between runs in a folder of its own.
+    fn command(&self, state: &TempDir) -> CommandBuilder {
         let mut command = CommandBuilder::new(&self.program);
         command.args(&self.arguments);
         command.cwd(env!("CARGO_MANIFEST_DIR"));
         ["NO_COLOR", "LC_ALL", "LC_CTYPE", "COLORTERM"].iter().for_each(|name| command.env_remove(name));
         command.env("TERM", "xterm-256color");
         command.env("LANG", "C.UTF-8");
-        // Where nothing can be kept: no test is to find what another left, nor to leave anything with its user.
-        command.env("XDG_STATE_HOME", "/dev/null");
+        command.env("XDG_STATE_HOME", state.path());
         self.environment.iter().for_each(|(name, value)| command.env(name, value));
         command.set_controlling_tty(self.controls);
         command
@@ -88,6 +89,7 @@ pub struct Session {
     keyboard: Option<Box<dyn Write + Send>>,
     arrived: Shared,
     reader: Option<JoinHandle<()>>,
+    state: TempDir,
 }
 
 fn lengths(columns: u16, rows: u16) -> PtySize {
@@ -102,7 +104,8 @@ impl Session {
     pub fn start(setup: &Setup) -> Self {
         let (columns, rows) = setup.size;
         let pair = native_pty_system().openpty(lengths(columns, rows)).unwrap();
-        let child = pair.slave.spawn_command(setup.command()).unwrap();
+        let state = tempfile::tempdir().unwrap();
+        let child = pair.slave.spawn_command(setup.command(&state)).unwrap();
         drop(pair.slave);
         let arrived = Arrived {
             screen: vt100::Parser::new(count(rows), count(columns), 0),
@@ -117,6 +120,7 @@ impl Session {
             keyboard: Some(keyboard),
             arrived: Arc::new((Mutex::new(arrived), Condvar::new())),
             reader: None,
+            state,
         };
         if setup.reads {
             session.read();

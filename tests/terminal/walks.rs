@@ -60,6 +60,23 @@ fn it_follows_the_terminal_to_any_size() {
 }
 
 #[test]
+fn a_table_is_saved() {
+    let folder = tempfile::tempdir().unwrap();
+    let path = folder.path().join("saved.csv");
+    let mut session = Session::start(&Setup::new(&[MODEL]));
+    session.wait_until_done();
+    session.keys("w");
+    session.wait_for_text("write the table to");
+    // The name that is offered is taken away first.
+    session.keys(&format!("{}{}\r", "\x7f".repeat(200), path.display()));
+    session.wait_for_text("written");
+    let text = std::fs::read_to_string(&path).unwrap();
+    assert!(text.contains("E4") && text.ends_with('\n'), "{text}");
+    session.keys("q");
+    assert_eq!(session.code(), 0);
+}
+
+#[test]
 fn doing_nothing_costs_nothing() {
     let mut session = Session::start(&Setup::new(&[MODEL]));
     session.wait_until_done();

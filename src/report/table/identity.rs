@@ -3,7 +3,7 @@
 //! Which equilibrium is which is found out by following it from one scenario to the next, see `analysis::passage`; here
 //! numbers become names, and what could not be followed becomes a sentence. A name is never given for being near.
 
-use crate::analysis::passage::{Identities, Passage, Reason};
+use crate::analysis::passage::{Fate, Identities, Passage, Reason};
 
 /// The names of the equilibria of some scenarios.
 #[derive(Clone, Debug, Default, PartialEq)]
@@ -31,23 +31,27 @@ impl Names {
         Self::new(&Identities { numbers: vec![(1..=count).collect()], unfollowed: vec![Vec::new()] })
     }
 
-    /// Adds a scenario of so many equilibria, which take the names of those of an earlier one, by its place among those shown,
-    /// that they are followed from; the others have new ones.
-    pub fn add_after(&mut self, earlier: usize, count: usize, passage: &Passage) {
-        let mut ids: Vec<Option<String>> = vec![None; count];
-        for (old, new) in passage.pairs() {
-            if let (Some(id), Some(old)) = (ids.get_mut(new), self.of(earlier).get(old)) {
-                *id = Some(old.clone());
+    /// With those of one more scenario at the end, of so many equilibria: what was followed from the scenario at place `base`
+    /// has its name from there, the rest names that none has had.
+    #[must_use]
+    pub fn with_one_over(mut self, base: usize, passage: &Passage, count: usize) -> Self {
+        let number = |name: &String| name.strip_prefix('E').and_then(|digits| digits.parse::<usize>().ok());
+        let last = self.ids.iter().flatten().filter_map(number).max().unwrap_or(0);
+        let mut names: Vec<Option<String>> = vec![None; count];
+        for (first, second) in passage.pairs() {
+            if let (Some(name), Some(id)) = (names.get_mut(second), self.of(base).get(first)) {
+                *name = Some(id.clone());
             }
         }
-        let number = |id: &String| id.strip_prefix('E').and_then(|number| number.parse::<usize>().ok());
-        let mut last = self.ids.iter().flatten().filter_map(number).max().unwrap_or(0);
-        let mut new = || {
-            last += 1;
-            format!("E{last}")
+        let mut new = (last + 1..).map(|number| format!("E{number}"));
+        let ids: Vec<String> = names.into_iter().filter_map(|name| name.or_else(|| new.next())).collect();
+        let reason = |place: usize| match passage.backward.get(place) {
+            Some(Fate::NotFollowed(reason)) => Some(*reason),
+            _ => None,
         };
-        self.ids.push(ids.into_iter().map(|id| id.unwrap_or_else(&mut new)).collect());
-        self.unfollowed.push(Vec::new());
+        self.unfollowed.push((0..count).filter_map(|k| Some((ids.get(k)?.clone(), reason(k)?))).collect());
+        self.ids.push(ids);
+        self
     }
 
     /// The names of a scenario's equilibria, by its place among those shown.

@@ -17,6 +17,10 @@ use crate::shell::workers::Threads;
 /// How often the loop hears of how far a search has come.
 const REPORT: Duration = Duration::from_millis(100);
 
+/// How far searches step back, of 19: a third of the processor where others want it as well.
+#[cfg(target_os = "linux")]
+const NICENESS: i32 = 5;
+
 /// A task on its way to a thread.
 struct Order {
     id: JobId,
@@ -35,13 +39,20 @@ pub(super) struct Labour {
 impl Labour {
     /// Starts them; `threads` is how many a search may use.
     pub(super) fn start(threads: Threads, events: &Events) -> Self {
-        let begin = |name: &str| {
+        let begin = |name: &str, steps_back: bool| {
             let (sender, orders) = channel();
             let events = events.clone();
-            let _ = thread::Builder::new().name(name.to_owned()).spawn(move || work(&orders, threads, &events));
+            let working = move || {
+                if steps_back {
+                    step_back();
+                }
+                work(&orders, threads, &events);
+            };
+            let _ = thread::Builder::new().name(name.to_owned()).spawn(working);
             sender
         };
-        Self { slow: begin("search"), quick: begin("quick"), between: begin("between"), flags: HashMap::new() }
+        let (slow, between, quick) = (begin("search", true), begin("between", true), begin("quick", false));
+        Self { slow, quick, between, flags: HashMap::new() }
     }
 
     /// Gives a task to a thread.
@@ -74,6 +85,17 @@ impl Labour {
         self.flags.values().any(|(stop, is_quick)| *is_quick && !stop.load(Ordering::Relaxed))
     }
 }
+
+/// From now on this thread, and those that it starts, let others go first: a search on all processors would keep keys waiting.
+/// Only here does that concern a thread rather than the whole process.
+#[cfg(target_os = "linux")]
+fn step_back() {
+    // Where it is refused all are alike, as they were.
+    let _ = rustix::process::setpriority_process(None, NICENESS);
+}
+
+#[cfg(not(target_os = "linux"))]
+fn step_back() {}
 
 fn work(orders: &Receiver<Order>, threads: Threads, events: &Events) {
     while let Ok(Order { id, task, stop }) = orders.recv() {
