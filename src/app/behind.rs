@@ -172,7 +172,7 @@ fn side_by_side(app: &App, study: &Study, form: Form) -> Result<String, String> 
 
 /// What was found in a slot, as of the scenario of the file that it shows.
 fn scene(study: &Study, slot: &Slot) -> Result<Scene, String> {
-    let found = slot.found.as_ref().filter(|_| slot.is_fresh());
+    let found = slot.found.as_ref().filter(|_| study.is_of_now(slot));
     let (_, scene) =
         found.ok_or_else(|| format!("\"{}\" is being searched; write it when that is done", slot.name()))?;
     let scenario = if slot.world == study.world { slot.scenario } else { study.tried.now.base };

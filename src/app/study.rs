@@ -235,8 +235,7 @@ impl Study {
 
     /// The slots whose equilibria can be named together: all that are searched in the world that they belong to.
     pub fn nameable(&self) -> Vec<usize> {
-        let is_present = |slot: &Slot| slot.world == self.world || slot.world.edition == self.tried.edition;
-        (0..self.slots.len()).filter(|&k| self.slots[k].is_fresh() && is_present(&self.slots[k])).collect()
+        (0..self.slots.len()).filter(|&k| self.is_of_now(&self.slots[k])).collect()
     }
 
     /// The name of the equilibrium that is selected.

@@ -2,7 +2,7 @@
 //!
 //! What a key does to them is in `update`. To try another kind of change, begin at [`Study::tried_value`].
 
-use super::study::Study;
+use super::study::{Slot, Study};
 use crate::analysis::field::nearest;
 use crate::model::{Parameter, ParameterId};
 
@@ -53,6 +53,11 @@ impl Study {
     pub fn base_slot(&self) -> Option<usize> {
         let base = self.tried.now.base;
         (0..self.of_file()).find(|&slot| self.slots.get(slot).is_some_and(|slot| slot.scenario == base))
+    }
+
+    /// Whether what was found in a slot is of the values that are tried now; in those of the file it always is.
+    pub fn is_of_now(&self, slot: &Slot) -> bool {
+        slot.is_fresh() && (slot.world == self.world || slot.world.edition == self.tried.edition)
     }
 
     /// The slot of the tried values, once it is ready.

@@ -41,16 +41,16 @@ pub(super) fn draw(app: &App, study: &Study, page: &mut Page<'_>) {
 /// What the tried values change.
 fn sentence(app: &App, study: &Study) -> String {
     let base = study.model().scenarios.get(study.base()).map_or("", |scenario| scenario.name.as_str());
-    let tried = study.tried_slot().filter(|&slot| slot == study.current);
-    let Some((tried, before)) = tried.zip(study.base_slot()) else {
+    let is_tried = !study.tried.now.values.is_empty() && study.tried.now.base == study.base();
+    if !is_tried {
         let keys = |action| key_of(Place::On(Screen::Values), action).unwrap_or_default();
         let (up, down) = (keys(Action::Fine(Step::On)), keys(Action::Fine(Step::Back)));
         return format!(
             "Nothing is tried over \"{base}\" yet. {down} and {up} change the selected value, in a scenario of its own."
         );
-    };
-    let slot = |slot: usize| study.slots.get(slot).filter(|slot| slot.is_fresh());
-    let Some((old, new)) = slot(before).zip(slot(tried)) else {
+    }
+    let slot = |slot: Option<usize>| study.slots.get(slot?).filter(|slot| study.is_of_now(slot));
+    let Some((old, new)) = slot(study.base_slot()).zip(slot(study.tried_slot())) else {
         let waits = if app.desk.jobs().is_empty() { "not searched" } else { "being searched" };
         return format!("With the tried values \"{base}\" is {waits}; below is what was found before.");
     };

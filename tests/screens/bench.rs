@@ -158,6 +158,14 @@ impl Bench {
         self.is_held = true;
     }
 
+    /// Does the task that was put off first; what it leads to is put off too.
+    pub(crate) fn work_once(&mut self) {
+        if let Some((id, task)) = self.waiting.pop_front() {
+            let effects = self.done(id, task);
+            self.perform(effects);
+        }
+    }
+
     /// Does the tasks that were put off, and no longer puts off any.
     pub(crate) fn work(&mut self) {
         self.is_held = false;

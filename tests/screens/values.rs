@@ -179,7 +179,7 @@ fn an_older_search_does_not_take_the_place_of_a_newer_value() {
     bench.press("v");
     bench.hold();
     bench.press("t6<Enter>");
-    bench.shows(&["Nothing is tried over"]);
+    bench.shows(&["With the tried values \"first\" is being searched; below is what was found before."]);
     bench.press("t7<Enter>");
     bench.work();
     bench.shows(&["7.000, 5.000"]);
