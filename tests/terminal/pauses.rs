@@ -21,7 +21,10 @@ fn is_shown(screen: &Screen) -> bool {
 
 fn wait_for_stop(session: &Session, times: usize) {
     session.wait_for("a stop", |screen| {
-        !screen.alternate_screen() && screen.contents().matches("Stopped").count() == times && !screen.hide_cursor()
+        let text = screen.contents();
+        // Not before the shell is ready: a program that it is still about to stop would be told to go on.
+        let is_ready = text.trim_end().ends_with("ready>") && text.matches("Stopped").count() == times;
+        !screen.alternate_screen() && is_ready && !screen.hide_cursor()
     });
 }
 

@@ -61,11 +61,15 @@ impl Setup {
         let mut command = CommandBuilder::new(&self.program);
         command.args(&self.arguments);
         command.cwd(env!("CARGO_MANIFEST_DIR"));
-        ["NO_COLOR", "LC_ALL", "LC_CTYPE", "COLORTERM"].iter().for_each(|name| command.env_remove(name));
+        for name in ["NO_COLOR", "LC_ALL", "LC_CTYPE", "COLORTERM"] {
+            command.env_remove(name);
+        }
         command.env("TERM", "xterm-256color");
         command.env("LANG", "C.UTF-8");
         command.env("XDG_STATE_HOME", state.path());
-        self.environment.iter().for_each(|(name, value)| command.env(name, value));
+        for (name, value) in &self.environment {
+            command.env(name, value);
+        }
         command.set_controlling_tty(self.controls);
         command
     }
@@ -263,7 +267,7 @@ impl Drop for Session {
 }
 
 fn follow(mut from: Box<dyn Read + Send>, arrived: &Shared) {
-    let mut bytes = [0; 65536];
+    let mut bytes = vec![0; 65536];
     while let Ok(count @ 1..) = from.read(&mut bytes) {
         let now = Instant::now();
         let mut state = arrived.0.lock().unwrap();

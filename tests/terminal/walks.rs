@@ -47,7 +47,7 @@ fn equilibria_and_scenarios_are_stepped_through() {
 fn it_follows_the_terminal_to_any_size() {
     let mut session = Session::start(&Setup::new(&[MODEL]));
     session.wait_until_done();
-    let text = |session: &Session| session.look(|screen| screen.contents());
+    let text = |session: &Session| session.look(vt100::Screen::contents);
     let before = text(&session);
     for (columns, rows) in [(1, 1), (60, 20), (2, 80), (300, 3), (u16::MAX, u16::MAX), (80, 24)] {
         let (_, count) = session.last();

@@ -233,7 +233,9 @@ mod tests {
                 _ => "something else".to_owned(),
             });
         };
-        bytes.iter().for_each(|&byte| decoder.take(byte, &mut send));
+        for &byte in bytes {
+            decoder.take(byte, &mut send);
+        }
         if decoder.patience().is_some() {
             decoder.end(&mut send);
         }
@@ -285,7 +287,7 @@ mod tests {
         check(b"\x1b[200~quit\x1b[201~n", &["pasted quit", "n"]);
         check(b"\x1b[200~a\x1b[20\x1b[201~n", &["pasted a\x1b[20", "n"]);
         check(b"\x1b[200~no end", &["pasted no end"]);
-        let long = decode(&[b"\x1b[200~".as_slice(), &[b'x'; 2 * LONGEST_PASTE], b"\x1b[201~n"].concat());
+        let long = decode(&[b"\x1b[200~".as_slice(), &vec![b'x'; 2 * LONGEST_PASTE], b"\x1b[201~n"].concat());
         assert_eq!(long.len(), 2);
         assert_eq!(long[0].len(), LONGEST_PASTE + "pasted ".len());
     }
@@ -298,7 +300,9 @@ mod tests {
             0..60,
         )) {
             let mut decoder = Decoder::default();
-            bytes.iter().for_each(|&byte| decoder.take(byte, &mut |_| {}));
+            for byte in bytes {
+                decoder.take(byte, &mut |_| {});
+            }
             decoder.end(&mut |_| {});
             let mut got = Vec::new();
             decoder.take(b'n', &mut |msg| got.push(msg));

@@ -1,10 +1,12 @@
 //! What the system asks for: an end, a pause, going on, another size.
 
 use std::io;
-use std::sync::atomic::{AtomicBool, Ordering};
+use std::sync::atomic::{AtomicUsize, Ordering};
+use std::sync::{Arc, LazyLock};
 use std::thread;
 
 use signal_hook::consts::{SIGCONT, SIGHUP, SIGINT, SIGQUIT, SIGTERM, SIGTSTP, SIGWINCH};
+use signal_hook::flag::register_usize;
 use signal_hook::iterator::Signals;
 
 use super::ending::end;
@@ -12,12 +14,13 @@ use super::screen::size;
 use super::{Event, Events};
 use crate::app::Msg;
 
-/// Whether the process was told to go on after it was last told to pause.
-static GOES_ON: AtomicBool = AtomicBool::new(false);
+/// The last of the two signals that concern a pause. It is noted where the signal arrives, not on the thread that listens:
+/// when a stopped process goes on, nothing says which of its threads runs first.
+static LAST: LazyLock<Arc<AtomicUsize>> = LazyLock::new(Arc::default);
 
 /// Whether the process was told to go on after it was last told to pause: then there is nothing to stop for any more.
 pub(super) fn goes_on() -> bool {
-    GOES_ON.load(Ordering::SeqCst)
+    LAST.load(Ordering::SeqCst) == SIGCONT.unsigned_abs() as usize
 }
 
 /// Listens from now on.
@@ -25,6 +28,9 @@ pub(super) fn goes_on() -> bool {
 /// # Errors
 /// If the system does not let us.
 pub(super) fn listen(events: Events) -> io::Result<()> {
+    for signal in [SIGCONT, SIGTSTP] {
+        register_usize(signal, Arc::clone(&LAST), signal.unsigned_abs() as usize)?;
+    }
     let mut signals = Signals::new([SIGCONT, SIGHUP, SIGINT, SIGQUIT, SIGTERM, SIGTSTP, SIGWINCH])?;
     let listening = move || {
         loop {
@@ -43,14 +49,8 @@ pub(super) fn listen(events: Events) -> io::Result<()> {
 fn tell(signal: i32, events: &Events) {
     let event = match signal {
         SIGWINCH => Event::Msg(Msg::Resized(size())),
-        SIGTSTP => {
-            GOES_ON.store(false, Ordering::SeqCst);
-            Event::Pause
-        }
-        SIGCONT => {
-            GOES_ON.store(true, Ordering::SeqCst);
-            Event::Resume
-        }
+        SIGTSTP => Event::Pause,
+        SIGCONT => Event::Resume,
         _ => Event::Signal(signal),
     };
     let is_end = matches!(event, Event::Signal(_));

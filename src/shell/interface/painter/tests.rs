@@ -121,7 +121,9 @@ proptest! {
 fn bytes(before: &[(u16, u16, &str)], after: &[(u16, u16, &str)]) -> Vec<u8> {
     let frame = |texts: &[(u16, u16, &str)]| {
         let mut frame = Buffer::empty(Rect::new(0, 0, 40, 5));
-        texts.iter().for_each(|(x, y, text)| _ = frame.set_string(*x, *y, text, Dress::default()));
+        for (x, y, text) in texts {
+            frame.set_string(*x, *y, text, Dress::default());
+        }
         frame
     };
     let mut painter = Painter::new(Style::Unicode, Depth::Any);
