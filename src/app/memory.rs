@@ -175,8 +175,8 @@ mod tests {
             "[".repeat(100_000),
             format!("{text}{}", " ".repeat(TEXT_LIMIT)),
         ] {
-            assert_eq!(read_session(&other), None, "{:.60}", other);
-            assert_eq!(read_recent(&other), None, "{:.60}", other);
+            assert_eq!(read_session(&other), None, "{other:.60}");
+            assert_eq!(read_recent(&other), None, "{other:.60}");
         }
     }
 

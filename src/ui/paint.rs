@@ -176,9 +176,8 @@ fn look(ink: Ink, depth: Depth) -> Look {
         Ink::Chosen => plain.add_modifier(Modifier::REVERSED),
         Ink::Species(index) => coloured(index),
         Ink::Now => coloured(6),
-        Ink::Point | Ink::Path => coloured(5).add_modifier(Modifier::BOLD),
         Ink::Proved => coloured(2),
         Ink::Undecided => coloured(0),
-        Ink::Warning => coloured(5).add_modifier(Modifier::BOLD),
+        Ink::Point | Ink::Path | Ink::Warning => coloured(5).add_modifier(Modifier::BOLD),
     }
 }

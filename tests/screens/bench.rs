@@ -55,7 +55,7 @@ impl Bench {
         let memory = Memory::at(state.path().to_path_buf());
         let errands = Errands::new(memory.clone());
         let (asked, waiting) = (Vec::new(), VecDeque::new());
-        Self { app, asked, writes: true, errands, memory, state: state, waiting, is_held: false, folder: None }
+        Self { app, asked, writes: true, errands, memory, state, waiting, is_held: false, folder: None }
     }
 
     /// The program is left and started again: nothing is known but what was kept.
@@ -237,7 +237,7 @@ impl Bench {
                 format!("{from}-{to}{colour}{modifier}")
             };
             if !runs.is_empty() {
-                lines += &format!("{y}: {}\n", runs.iter().map(run).collect::<Vec<_>>().join(", "));
+                lines = format!("{lines}{y}: {}\n", runs.iter().map(run).collect::<Vec<_>>().join(", "));
             }
         }
         lines

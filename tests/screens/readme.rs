@@ -33,7 +33,7 @@ fn renewed(readme: &str) -> (String, usize) {
         let (columns, rows) = size.split_once('x').unwrap();
         let mut bench = Bench::of(model).at([columns.parse().unwrap(), rows.parse().unwrap()]);
         bench.press(keys);
-        text += &format!("{MARK}{mark} -->\n```text\n{}```\n{after}", bench.text());
+        text = format!("{text}{MARK}{mark} -->\n```text\n{}```\n{after}", bench.text());
         count += 1;
     }
     (text, count)

@@ -1,6 +1,7 @@
 //! Thousands of keys at random, with the terminal's size changing under them and answers coming late and in any order:
 //! nothing panics, whatever is selected is there, and what is drawn fits.
 
+use restpoint::analysis::field::nearest;
 use restpoint::app::keymap::{BINDINGS, lookup, place};
 use restpoint::app::{Action, App, Dialog, Key, Msg};
 use restpoint::num::random::Source;
@@ -61,7 +62,7 @@ fn walk(model: &str, seed: u64) {
 }
 
 fn one(bench: &mut Bench, source: &mut Source) {
-    let below = |source: &mut Source, count: usize| (source.unit() * count as f64) as usize;
+    let below = |source: &mut Source, count: usize| nearest(source.unit() * count as f64 - 0.5, count.max(1) - 1);
     match below(source, 20) {
         0 => {
             let columns = below(source, 220) as u16;

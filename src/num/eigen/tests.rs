@@ -180,7 +180,7 @@ fn graded_matrices_agree_with_the_schur_form() {
     for n in [4, 7, 20, 50] {
         for ratio in [0.9, 0.3f64] {
             let entries: Vec<f64> =
-                (0..n * n).map(|k| source.between(-1.0, 1.0) * ratio.powi((k / n + k % n) as i32)).collect();
+                (0..n * n).map(|k| source.between(-1.0, 1.0) * ratio.powf((k / n + k % n) as f64)).collect();
             let Spectrum { values, vectors } = spectrum(&entries, n).expect("random");
             let condition = vectors.expect("asked for").condition;
             let alone = eigenvalues(&entries, n).expect("random");

@@ -67,7 +67,7 @@ const MOST_NAMED: usize = 4;
 /// A knock that grows by less than this share is not said to grow.
 const GROWTH: f64 = 0.05;
 
-impl<'c> Case<'c> {
+impl Case<'_> {
     fn with<T>(&self, place: usize, show: impl FnOnce(&Row<'_>) -> T) -> Option<T> {
         let names = Names { ids: vec![self.ids.to_vec()], unfollowed: Vec::new() };
         let table = Table {
@@ -199,9 +199,8 @@ fn who(row: &Row<'_>) -> String {
 
 /// What becomes of it after a knock.
 fn fate(row: &Row<'_>) -> Option<String> {
-    let (linear, measures) = match (row.linear(), row.measures()) {
-        (Some(linear), Some(measures)) => (linear, measures),
-        _ => return row.why().map(|why| capital(why) + "."),
+    let (Some(linear), Some(measures)) = (row.linear(), row.measures()) else {
+        return row.why().map(|why| capital(why) + ".");
     };
     Some(match linear.stable {
         Some(true) => returns(row, linear, measures),
@@ -225,12 +224,12 @@ fn returns(row: &Row<'_>, linear: &Linearisation, measures: &Measures) -> String
         None => "Returns after a knock".to_owned(),
     };
     if let Some(period) = measures.period {
-        text += &format!(", swinging with a period of {} {time}", human(period));
+        text = format!("{text}, swinging with a period of {} {time}", human(period));
     } else if linear.alternating {
         text += ", above and below by turns";
     }
     if let Some(grown) = measures.amplification.filter(|grown| grown.factor > 1.0 + GROWTH) {
-        text += &format!("; a knock can first grow {:.1}-fold", grown.factor);
+        text = format!("{text}; a knock can first grow {:.1}-fold", grown.factor);
     }
     text + "."
 }
@@ -245,7 +244,7 @@ fn leaves(row: &Row<'_>, measures: &Measures) -> String {
         count => format!("Does not last: {count} species can come in"),
     };
     if let Some(to) = row.assessed().and_then(|assessed| assessed.settles.as_ref()) {
-        text += &match to {
+        let to = match to {
             Destination::Equilibrium(_) => format!("; beside it the path goes to {}", paths::word(row.place(), to)),
             Destination::Cycle(cycle) => format!(
                 "; beside it the path goes to a cycle of {} {}",
@@ -255,7 +254,7 @@ fn leaves(row: &Row<'_>, measures: &Measures) -> String {
             Destination::Loss(_) => format!("; beside it the path goes to the {}", paths::word(row.place(), to)),
             Destination::NotSettled => "; where the path beside it goes is open".to_owned(),
         };
-        text += " (numerical)";
+        text = format!("{text}{to} (numerical)");
     }
     text + "."
 }
