@@ -1,7 +1,7 @@
 //! The JSON of the table against the contract, for every shipped model.
 #![allow(clippy::unwrap_used, reason = "a test fails by panicking")]
 
-use std::collections::{BTreeMap, BTreeSet};
+use std::collections::BTreeSet;
 use std::sync::OnceLock;
 
 use crate::cli_support::{fast, run, run_on};
@@ -60,17 +60,19 @@ fn check_model(json: &Value) {
     assert!(["continuous", "discrete"].contains(&json["model"]["time"].as_str().unwrap()));
     let sha256 = json["model"]["sha256"].as_str().unwrap();
     assert!(sha256.len() == 64 && sha256.chars().all(|c| c.is_ascii_hexdigit()), "{sha256}");
-    // An identity is one community in all scenarios.
-    let mut communities: BTreeMap<&str, &Value> = BTreeMap::new();
+    // Who is present may change on the way from one plan to another; a name is only ever of one state of a scenario.
+    let mut known: BTreeSet<&str> = BTreeSet::new();
     for scenario in list(&json["scenarios"]) {
         check_scenario(scenario);
+        let mut here: BTreeSet<&str> = BTreeSet::new();
         for equilibrium in list(&scenario["equilibria"]) {
             let id = equilibrium["id"].as_str().unwrap();
-            assert_eq!(*communities.entry(id).or_insert(&equilibrium["present"]), &equilibrium["present"], "{id}");
+            assert!(here.insert(id), "{id} twice");
         }
+        known.extend(here);
     }
-    let named: Vec<String> = (1..=communities.len()).map(|number| format!("E{number}")).collect();
-    assert_eq!(communities.keys().copied().collect::<BTreeSet<_>>(), named.iter().map(String::as_str).collect());
+    let named: Vec<String> = (1..=known.len()).map(|number| format!("E{number}")).collect();
+    assert_eq!(known, named.iter().map(String::as_str).collect());
 }
 
 fn check_scenario(scenario: &Value) {

@@ -110,7 +110,7 @@ impl Case<'_> {
         .unwrap_or_default()
     }
 
-    /// Its sign, name and type, and how sure each is: `●~ E5, stable spiral, proved`; empty where there is none.
+    /// Its sign, name and type, and how sure each is: the sign, then `E5, stable spiral, proved`; empty where there is none.
     pub fn label(&self, place: usize, ascii: bool) -> String {
         self.with(place, |row| label(row, ascii)).unwrap_or_default()
     }

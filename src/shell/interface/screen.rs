@@ -132,12 +132,15 @@ impl Write for Output {
     }
 }
 
-/// Asks all processes that were started together with this one for a pause, as the terminal would on Ctrl-Z.
+/// Pauses all processes that were started together with this one, as the terminal would on Ctrl-Z.
+///
+/// By the signal that nobody can catch: one that we caught ourselves would have us stop a moment later, and a shell that is
+/// quick may have told us to go on before.
 pub(super) fn ask_for_pause() {
     if has_shell() {
         // Before: as soon as another of them has stopped, the shell takes the terminal, and we may not change it any more.
         give_back();
-        let _ = kill_current_process_group(Signal::TSTP);
+        let _ = kill_current_process_group(Signal::STOP);
     }
 }
 

@@ -20,7 +20,7 @@ const MODIFIERS: [Modifier; 6] = [
 ];
 /// With what no frame should hold, and what a terminal may hold for wider than we do.
 const GLYPHS: [&str; 16] =
-    [" ", " ", " ", " ", "a", "Z", "~", "●", "─", "é", "e\u{301}", "漢", "🐟", "", "\u{7}", "\u{200b}"];
+    [" ", " ", " ", " ", "a", "Z", "~", "■", "─", "é", "e\u{301}", "漢", "🐟", "", "\u{7}", "\u{200b}"];
 
 /// A change of a frame: where, which glyph, which colour and modifier.
 type Change = (usize, usize, usize, usize);
