@@ -8,7 +8,12 @@ mod interactions;
 mod kept;
 mod knock;
 mod looks;
+#[path = "../tables/markdown.rs"]
+mod markdown;
+mod saved;
 mod skeleton;
+#[path = "../tables/tex.rs"]
+mod tex;
 mod texts;
 mod values;
 mod walk;
