@@ -1,25 +1,22 @@
 //! The table behind a screen: what `restpoint table` prints, made by the same code and to the same bytes, with the command
-//! that makes it again.
+//! that makes it again. Of a knock and of interactions, which no command prints, the rows that the screen shows.
 //!
 //! To give a screen a table of its own: an arm in [`behind`].
 
+use super::saved::PAGE;
 use super::study::Slot;
 use super::wants::naming;
 use super::{Answer, App, Screen, Source, Study, beside, interactions, knock};
 use crate::diag::SourceId;
 use crate::model::ParameterId;
 use crate::report::compare::{self, Comparison};
-use crate::report::sketch::Style;
-use crate::report::table::{Command, Form, Limits, Names, Page, Scene, Table, written};
-
-/// Columns of a text that is written to a file.
-const WIDTH: usize = 80;
+use crate::report::rows;
+use crate::report::table::{Command, Form, Limits, Names, Scene, Table, written};
 
 /// Said where what is shown is not known yet.
 const WAIT: &str = "it is still being worked out; write it when that is done";
 
-/// The table behind the present screen. Of a knock and of interactions a text and a CSV have what the screen shows, the other
-/// forms the table.
+/// The table behind the present screen; of a knock and of interactions, in whichever form, what the screen shows.
 ///
 /// # Errors
 ///
@@ -28,16 +25,7 @@ pub fn behind(app: &App, form: Form) -> Result<String, String> {
     match (app.screen, &app.study) {
         (Screen::Chooser, _) | (_, None) => Err("no model is open".to_owned()),
         (Screen::SideBySide, Some(study)) => side_by_side(app, study, form),
-        (Screen::Interactions, Some(study)) => match form {
-            Form::Text => interactions::text(app).ok_or_else(|| WAIT.to_owned()),
-            Form::Csv => interactions::csv(app).ok_or_else(|| "there is no linear part here".to_owned()),
-            _ => table(app, study, form),
-        },
-        (Screen::Knock, Some(study)) => match form {
-            Form::Text => knock::text(app).ok_or_else(|| WAIT.to_owned()),
-            Form::Csv => knock::csv(app).ok_or_else(|| WAIT.to_owned()),
-            _ => table(app, study, form),
-        },
+        (Screen::Interactions | Screen::Knock, Some(study)) => of_selected(app, study, form),
         // What these screens say of equilibria, the table says in more columns.
         (Screen::Equilibria | Screen::Values, Some(study)) => table(app, study, form),
     }
@@ -78,6 +66,22 @@ pub fn set(study: &Study, slot: usize) -> Vec<(ParameterId, f64)> {
     kept.chain(tried).copied().collect()
 }
 
+/// What a screen shows of the selected equilibrium.
+fn of_selected(app: &App, study: &Study, form: Form) -> Result<String, String> {
+    let is_knock = app.screen == Screen::Knock;
+    let made = match form {
+        Form::Text if is_knock => knock::text(app),
+        Form::Text => interactions::text(app),
+        _ => {
+            let made = if is_knock { knock::rows(app) } else { interactions::rows(app) };
+            made.map(|made| rows::written(&made, form, PAGE))
+        }
+    };
+    let is_searched = study.slot().is_some_and(Slot::is_fresh);
+    let why = if is_searched && study.selected().is_none() { "there is no equilibrium here" } else { WAIT };
+    made.ok_or_else(|| why.to_owned())
+}
+
 fn table(app: &App, study: &Study, form: Form) -> Result<String, String> {
     // A command says all scenarios of the file, or one with values set over it; never both.
     let slots = if study.tried_slot().is_none() { 0..study.slots.len() } else { study.current..study.current + 1 };
@@ -116,7 +120,7 @@ fn table(app: &App, study: &Study, form: Form) -> Result<String, String> {
         interrupted: false,
         columns: None,
     };
-    Ok(written(&table, form, Page { width: WIDTH, style: Style::Unicode, color: false }))
+    Ok(written(&table, form, PAGE))
 }
 
 /// The names of all that is shown.
@@ -166,12 +170,15 @@ fn side_by_side(app: &App, study: &Study, form: Form) -> Result<String, String> 
         interrupted: false,
         columns: None,
     };
-    let page = Page { width: WIDTH, style: Style::Unicode, color: false };
-    Ok(compare::written(&Comparison::new(&table, &known.passages), form, page))
+    Ok(compare::written(&Comparison::new(&table, &known.passages), form, PAGE))
 }
 
 /// What was found in a slot, as of the scenario of the file that it shows.
-fn scene(study: &Study, slot: &Slot) -> Result<Scene, String> {
+///
+/// # Errors
+///
+/// That it is being searched.
+pub fn scene(study: &Study, slot: &Slot) -> Result<Scene, String> {
     let found = slot.found.as_ref().filter(|_| study.is_of_now(slot));
     let (_, scene) =
         found.ok_or_else(|| format!("\"{}\" is being searched; write it when that is done", slot.name()))?;

@@ -1,13 +1,14 @@
 //! Who acts on whom: which effects of the selected equilibrium are looked at, and from where on.
 //!
-//! [`parts`] says where things stand, [`table`] makes what is shown, [`text`] and [`csv`] what is saved.
+//! [`parts`] says where things stand, [`table`] makes what is shown, [`text`] and [`rows`] what is saved.
 
 use super::geometry::{Area, Size, frame};
 use super::study::Selected;
-use super::{App, Study};
+use super::{App, Study, saved};
+use crate::model::{Model, TimeKind};
 use crate::report::interactions::{self, Effects, Interactions, Who, sentences, signs, visible};
+use crate::report::rows::{Fact, Rows};
 use crate::report::sketch::{self, Style};
-use crate::report::table::{CAUTION, Page};
 
 /// What is looked at.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -114,16 +115,47 @@ pub fn words(selected: &Selected<'_>, style: Style) -> Vec<String> {
     sentences(selected.model(), selected.equilibrium, selected.assessed, style)
 }
 
-/// Columns of the sentences that are saved.
-const SAVED_COLUMNS: usize = 80;
-
-/// Both tables of the selected equilibrium as text, for a file; `None` where nothing is selected.
-pub fn text(app: &App) -> Option<String> {
+/// All effects of the selected equilibrium, one a row; `None` where nothing is selected, or its scenario is being searched.
+/// Where there are no effects there are no rows, and what is said is why.
+pub fn rows(app: &App) -> Option<Rows> {
     let study = app.study.as_ref()?;
     let selected = study.selected()?;
-    let mut lines = selected.heading(study, Style::Unicode);
-    let page = Page { width: SAVED_COLUMNS, style: Style::Unicode, color: false };
-    lines.extend(words(&selected, Style::Unicode).iter().map(|text| page.paragraph("", text, 0)));
+    let model = selected.model();
+    let mut facts = saved::facts(app, study, &selected)?;
+    let who = if study.interacting.who == Who::Present { "those present" } else { "all species" };
+    facts.push(Fact::of_text("species", "species", who));
+    facts.extend(meanings(model));
+    let both = [Effects::Direct, Effects::Net].into_iter().filter_map(|effects| table(study, effects)?.ok());
+    Some(Rows {
+        title: model.title.value.clone(),
+        time: model.time.clone(),
+        what: "Interactions".to_owned(),
+        facts,
+        said: words(&selected, Style::Unicode),
+        headings: interactions::headings().map(str::to_owned).to_vec(),
+        rows: both.flat_map(|table| interactions::rows(&table, model)).map(Vec::from).collect(),
+        most: None,
+    })
+}
+
+/// What the numbers of rows are.
+fn meanings(model: &Model) -> [Fact; 2] {
+    let unit = &model.time_unit.value;
+    let [at_once, press] = match model.time {
+        TimeKind::Continuous => [format!("the growth, per {unit}, of"), format!("per {unit}")],
+        TimeKind::Discrete { .. } => ["the next state of".to_owned(), "at each step".to_owned()],
+    };
+    let direct = format!("what one more of who is pressed does at once to {at_once} who answers");
+    let net = format!("the lasting answer to one more {press} of who is pressed (numerical)");
+    [Fact::of_text("direct", "direct", direct), Fact::of_text("net", "net", net)]
+}
+
+/// Both tables of the selected equilibrium as text, for a file; `None` where there are no [`rows`].
+pub fn text(app: &App) -> Option<String> {
+    let made = rows(app)?;
+    let study = app.study.as_ref()?;
+    let selected = study.selected()?;
+    let mut lines = Vec::new();
     for effects in [Effects::Direct, Effects::Net] {
         lines.push(String::new());
         match table(study, effects)? {
@@ -134,19 +166,7 @@ pub fn text(app: &App) -> Option<String> {
             Err(reason) => lines.push(reason.to_owned()),
         }
     }
-    lines.extend([String::new(), page.paragraph("", CAUTION, 0)]);
-    Some(lines.iter().fold(String::new(), |text, line| text + line.trim_end() + "\n"))
-}
-
-/// Both tables as CSV, one row an effect; `None` where there is none.
-pub fn csv(app: &App) -> Option<String> {
-    let study = app.study.as_ref()?;
-    let selected = study.selected()?;
-    let of = |effects| Some(interactions::csv(&table(study, effects)?.ok()?, selected.model(), Style::Unicode));
-    let direct = of(Effects::Direct)?;
-    // One heading for both.
-    let net = of(Effects::Net).unwrap_or_default();
-    Some(direct + net.split_once('\n').map_or("", |(_, rows)| rows))
+    Some(saved::text(&made, lines))
 }
 
 /// Signs with their meanings in a line.

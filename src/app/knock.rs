@@ -1,20 +1,23 @@
 //! After a knock: who is hit, how hard, and the path that is followed from there.
 //!
 //! [`Knock`] is what the user chose, [`blow`] what it comes to at the selected equilibrium: the state that the path starts
-//! from, and how it is said. [`run`] is the work to be done, [`parts`] says where things stand, [`text`] and [`csv`] make what
+//! from, and how it is said. [`run`] is the work to be done, [`parts`] says where things stand, [`text`] and [`rows`] make what
 //! is saved.
 
 use std::sync::Arc;
+
+use serde_json::Value;
 
 use super::geometry::{Area, Size, frame};
 use super::study::Selected;
 use super::task::{Answer, Found, Release, Task};
 use super::wants::start;
-use super::{App, Study};
+use super::{App, Study, saved};
 use crate::model::TimeKind;
 use crate::report::course::{self, Course, bands, drawing, horizon, knocked, sentences, signs};
+use crate::report::rows::{Fact, Rows};
 use crate::report::sketch::{self, Style};
-use crate::report::table::{CAUTION, Page, clean, human};
+use crate::report::table::{clean, human};
 
 /// Who is hit.
 #[derive(Clone, Copy, Debug, Default, PartialEq, Eq)]
@@ -212,9 +215,19 @@ pub fn room(size: Size) -> sketch::Size {
     sketch::Size { columns: area.columns.into(), rows: area.rows.into() }
 }
 
-/// What came of the knock, in sentences.
+/// What came of the knock, in sentences, and what one may try next.
 pub fn words(study: &Study, course: &Course, style: Style) -> Vec<String> {
     let Some(selected) = study.selected() else { return Vec::new() };
+    let mut said = came_of_it(study, &selected, course, style);
+    if let Some([left_out, hint]) = could_come_in(study, &selected) {
+        said.pop();
+        said.push(clean(&format!("{left_out}; {hint}."), style));
+    }
+    said
+}
+
+/// What came of the knock, in sentences; at last who has no part in it but could.
+fn came_of_it(study: &Study, selected: &Selected<'_>, course: &Course, style: Style) -> Vec<String> {
     let id = selected.id(study);
     let id = if id.is_empty() { "the equilibrium" } else { id };
     let mut said = sentences(course, selected.model(), id, selected.assessed.measures.return_time, style);
@@ -224,57 +237,76 @@ pub fn words(study: &Study, course: &Course, style: Style) -> Vec<String> {
         // Where it ends matters more than all else.
         said.insert(0, format!("At the end within 10 % of {name} (numerical)."));
     }
-    said.extend(could_come_in(study, &selected).map(|text| clean(&text, style)));
+    said.extend(could_come_in(study, selected).map(|[left_out, _]| clean(&format!("{left_out}."), style)));
     said
 }
 
 /// Species that are named as able to come in.
 const MOST_NAMED: usize = 3;
 
-/// Who could upset the state but has no part in the path; `None` where nobody could.
-fn could_come_in(study: &Study, selected: &Selected<'_>) -> Option<String> {
+/// Who could upset the state but has no part in the path, and the key for it, both without a full stop; `None` where nobody
+/// could.
+fn could_come_in(study: &Study, selected: &Selected<'_>) -> Option<[String; 2]> {
     let rates = selected.assessed.measures.invasion.iter();
     let able: Vec<usize> = rates.filter(|(_, rate)| rate.is_some_and(|rate| rate > 0.0)).map(|(id, _)| id.0).collect();
     let is_on_the_way = matches!(hit(study), Some(Hit::Point)) || able.iter().any(|&i| hit(study) == Some(Hit::One(i)));
     let names = able.iter().filter_map(|&i| selected.model().species.get(i)).map(|one| one.name.as_str());
+    let each = "Tab brings each in".to_owned();
     match able.len() {
         _ if is_on_the_way => None,
         0 => None,
-        1 => Some(format!("Left out is {}, though it could come in; Tab brings it in.", names.collect::<String>())),
+        1 => Some([
+            format!("Left out is {}, though it could come in", names.collect::<String>()),
+            "Tab brings it in".to_owned(),
+        ]),
         2..=MOST_NAMED => {
             let names = names.collect::<Vec<_>>().join(", ");
-            Some(format!("Left out are {names}, though they could come in; Tab brings each in."))
+            Some([format!("Left out are {names}, though they could come in"), each])
         }
-        count => Some(format!("Left out are {count} species, though they could come in; Tab brings each in.")),
+        count => Some([format!("Left out are {count} species, though they could come in"), each]),
     }
 }
 
-/// Columns of a drawing that is saved.
-const SAVED_COLUMNS: usize = 80;
-/// Rows of each species in it.
+/// Rows of each species in a drawing that is saved.
 const SAVED_ROWS: usize = 10;
 
-/// What came of the knock as text, with a drawing of all species, for a file; `None` where it is not known.
-pub fn text(app: &App) -> Option<String> {
+/// Times that a report lists.
+const LISTED: usize = 40;
+
+/// The path and what the linear part predicts of it, one row a time; `None` where they are not known, or the scenario is
+/// being searched.
+pub fn rows(app: &App) -> Option<Rows> {
     let study = app.study.as_ref()?;
     let selected = study.selected()?;
+    let model = selected.model();
     let course = known(app, study)?;
-    let page = Page { width: SAVED_COLUMNS, style: Style::Unicode, color: false };
-    let mut lines = selected.heading(study, Style::Unicode);
-    let mut said = vec![format!("After a knock: {}.", blow(study)?.at_length())];
-    said.extend(words(study, course, Style::Unicode));
-    lines.extend(said.iter().map(|text| page.paragraph("", text, 0)));
-    let all = bands(course, room(app.size))[1];
-    let size = sketch::Size { columns: SAVED_COLUMNS, rows: all.max(1) * SAVED_ROWS };
-    lines.push(String::new());
-    lines.extend(drawing(course, selected.model(), 0, size, Style::Unicode).lines(false));
-    lines.push(super::interactions::said(&signs(course, Style::Unicode)));
-    lines.extend([String::new(), page.paragraph("", CAUTION, 0)]);
-    Some(lines.iter().fold(String::new(), |text, line| text + line.trim_end() + "\n"))
+    let blow = blow(study)?;
+    let mut facts = saved::facts(app, study, &selected)?;
+    facts.push(Fact::of_text("knock", "knock", blow.at_length()));
+    facts.push(saved::state("after", "just after it", &selected, &blow.state));
+    let value = |x: Option<f64>| x.map_or(Value::Null, |x| (x + 0.0).into());
+    let row = |row: Vec<Option<f64>>| row.into_iter().map(value).collect();
+    Some(Rows {
+        title: model.title.value.clone(),
+        time: model.time.clone(),
+        what: "After a knock".to_owned(),
+        facts,
+        said: came_of_it(study, &selected, course, Style::Unicode),
+        headings: course::headings(course, model),
+        rows: course::rows(course).into_iter().map(row).collect(),
+        most: Some(LISTED),
+    })
 }
 
-/// The path and its prediction as CSV, one row a time; `None` where they are not known.
-pub fn csv(app: &App) -> Option<String> {
+/// What came of the knock as text, with a drawing of all species, for a file; `None` where there are no [`rows`].
+pub fn text(app: &App) -> Option<String> {
+    let made = rows(app)?;
     let study = app.study.as_ref()?;
-    Some(course::csv(known(app, study)?, study.selected()?.model(), Style::Unicode))
+    let course = known(app, study)?;
+    let all = bands(course, room(app.size))[1];
+    let size = sketch::Size { columns: saved::COLUMNS, rows: all.max(1) * SAVED_ROWS };
+    let mut lines = vec![String::new()];
+    lines.extend(drawing(course, study.selected()?.model(), 0, size, Style::Unicode).lines(false));
+    lines.push(super::interactions::said(&signs(course, Style::Unicode)));
+    Some(saved::text(&made, lines))
 }

@@ -17,6 +17,7 @@ pub mod key;
 pub mod keymap;
 pub mod knock;
 pub mod memory;
+pub mod saved;
 pub mod sketch;
 pub mod study;
 pub mod task;

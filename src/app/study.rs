@@ -3,7 +3,6 @@
 use std::sync::Arc;
 
 use super::Source;
-use super::behind::set;
 use super::beside::Beside;
 use super::interactions::Interacting;
 use super::knock::Knock;
@@ -14,7 +13,7 @@ use crate::analysis::equilibria::Equilibrium;
 use crate::analysis::prepare::Prepared;
 use crate::model::{Model, Original, ParameterId};
 use crate::report::sketch::Style;
-use crate::report::table::{Case, Names, Scene, Solved, clean};
+use crate::report::table::{Case, Names, Scene, Solved};
 
 /// A model ready to be searched. Two of them are the same where their editions are.
 #[derive(Clone, Debug)]
@@ -257,9 +256,6 @@ impl Study {
     }
 }
 
-/// What made a text.
-const PROGRAM: &str = concat!("restpoint ", env!("CARGO_PKG_VERSION"));
-
 /// The equilibrium that is selected.
 #[derive(Clone, Copy, Debug)]
 pub struct Selected<'s> {
@@ -290,26 +286,16 @@ impl<'s> Selected<'s> {
 
     /// Its sign, name and type, and how sure they are.
     pub fn label(&self, study: &Study, style: Style) -> String {
-        let bounds = &self.world.prepared.bounds;
-        let ids = study.names(study.current);
-        let case = Case { model: self.model(), bounds, scene: self.scene, solved: self.solved, ids };
-        case.label(self.place, style == Style::Ascii)
+        self.case(study).label(self.place, style == Style::Ascii)
     }
 
-    /// What a text about it begins with: model, scenario, what is set over it, equilibrium, each a line, harmless.
-    pub fn heading(&self, study: &Study, style: Style) -> Vec<String> {
-        let scenario = self.model().scenarios.get(self.scene.scenario).map_or("", |scenario| &scenario.name);
-        let set = set(study, study.current).into_iter();
-        let set = set.filter_map(|(id, value)| Some((&self.model().parameters.get(id.0)?.name, value)));
-        let set: Vec<String> = set.map(|(name, value)| format!("{name} = {value}")).collect();
-        let mut lines = vec![
-            self.model().title.value.clone(),
-            format!("SHA-256: {}", self.world.original.sha256),
-            format!("program: {PROGRAM}"),
-            format!("scenario: {scenario}"),
-        ];
-        lines.extend((!set.is_empty()).then(|| format!("set: {}", set.join(", "))));
-        lines.push(self.label(study, style));
-        lines.iter().map(|line| clean(line, style)).collect()
+    /// Its name and type, and how sure they are.
+    pub fn in_words(&self, study: &Study) -> String {
+        self.case(study).in_words(self.place)
+    }
+
+    fn case<'a>(&'a self, study: &'a Study) -> Case<'a> {
+        let ids = study.names(study.current);
+        Case { model: self.model(), bounds: &self.world.prepared.bounds, scene: self.scene, solved: self.solved, ids }
     }
 }

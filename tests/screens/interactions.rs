@@ -1,10 +1,11 @@
 //! Who acts on whom: the tables, what is telling in them, how they scroll.
 
-use restpoint::app::interactions::{csv, text};
+use restpoint::app::interactions::{rows, text};
 use std::path::{Path, PathBuf};
 
 use crate::bench::{Bench, SIZES};
 use crate::texts::{looks_as, written};
+use serde_json::{Value, json};
 use unicode_width::UnicodeWidthStr;
 
 fn words(bench: &Bench) -> String {
@@ -143,13 +144,14 @@ fn what_is_saved_has_both_tables() {
         assert!(saved.contains(part), "no {part} in\n{saved}");
     }
     assert_eq!(written(&mut bench, "who.txt"), saved);
-    let saved = csv(&bench.app).unwrap();
-    assert_eq!(written(&mut bench, "who.csv"), saved);
-    let rows: Vec<&str> = saved.lines().collect();
-    assert_eq!(rows.len(), 9, "{saved}");
-    assert_eq!(rows[0], "effects,answer of,press on,number,sign,sign is");
-    assert_eq!(rows[2], "direct,S,C,-4.0,minus,proved");
-    assert!(rows[7].starts_with("net,C,S,0.25") && rows[7].ends_with(",plus,numerical"), "{saved}");
+    let saved = rows(&bench.app).unwrap();
+    assert_eq!(saved.rows.len(), 8);
+    assert_eq!(saved.headings, ["effects", "answer of", "press on", "number", "sign", "sign is"]);
+    let row = |place: usize| Value::from(saved.rows[place].clone());
+    assert_eq!(row(1), json!(["direct", "S", "C", -4.0, "minus", "proved"]));
+    let quarter = saved.rows[6][3].as_f64().unwrap();
+    assert!((quarter - 0.25).abs() < 1e-12, "{quarter}");
+    assert_eq!(row(6), json!(["net", "C", "S", quarter, "plus", "numerical"]));
 }
 
 /// The models of `scenarios`.

@@ -8,8 +8,13 @@ mod interactions;
 mod kept;
 mod knock;
 mod looks;
+#[path = "../tables/markdown.rs"]
+mod markdown;
 mod readme;
+mod saved;
 mod skeleton;
+#[path = "../tables/tex.rs"]
+mod tex;
 mod texts;
 mod values;
 mod walk;

@@ -3,7 +3,6 @@
 
 use crate::table_support::{HOSTILE, SHA256, hostile_model, model, with_table_of};
 use csv::StringRecord;
-use pulldown_cmark::{Event, Options, Parser, Tag, TagEnd};
 use restpoint::diag::cleanse::cleanse;
 use restpoint::model::Model;
 use restpoint::report::table::{Page, Style, csv, json, latex, markdown};
@@ -125,40 +124,11 @@ fn csv_keeps_any_name_as_text() {
     }
 }
 
-/// Markdown as a reader of it sees it.
-#[derive(Default)]
-struct Seen {
-    headings: Vec<String>,
-    /// Each table: rows of cells, the headings first.
-    tables: Vec<Vec<Vec<String>>>,
-    paragraphs: Vec<String>,
-}
-
-fn read_markdown(text: &str) -> Seen {
-    let mut seen = Seen::default();
-    let mut words = String::new();
-    for event in Parser::new_ext(text, Options::ENABLE_TABLES | Options::ENABLE_STRIKETHROUGH) {
-        match event {
-            Event::Start(Tag::Table(_)) => seen.tables.push(Vec::new()),
-            Event::Start(Tag::TableHead | Tag::TableRow) => seen.tables.last_mut().unwrap().push(Vec::new()),
-            Event::Start(Tag::Heading { .. } | Tag::Paragraph | Tag::TableCell) => words.clear(),
-            Event::End(TagEnd::Heading(_)) => seen.headings.push(words.clone()),
-            Event::End(TagEnd::Paragraph) => seen.paragraphs.push(words.clone()),
-            Event::End(TagEnd::TableCell) => seen.tables.last_mut().unwrap().last_mut().unwrap().push(words.clone()),
-            Event::Text(text) => words.push_str(&text),
-            Event::Start(Tag::Strong | Tag::Emphasis)
-            | Event::End(TagEnd::Strong | TagEnd::Emphasis | TagEnd::Table | TagEnd::TableHead | TagEnd::TableRow) => {}
-            other => panic!("{other:?} in {text}"),
-        }
-    }
-    seen
-}
-
 #[test]
 fn markdown_shows_any_name_as_it_is() {
     for raw in HOSTILE {
         let text = with_table_of(&hostile_model(raw), None, |table| markdown(table, PAGE));
-        let seen_there = read_markdown(&text);
+        let seen_there = crate::markdown::read(&text);
         let name = seen(raw);
         let scenario = format!("Scenario: {name}");
         assert_eq!(seen_there.headings, [name.as_str(), &scenario, &scenario, &scenario]);

@@ -12,5 +12,6 @@ mod columns;
 mod compact;
 mod formats;
 mod json;
+mod markdown;
 mod tex;
 mod text;

@@ -1,16 +1,16 @@
 //! After a knock: abundances against time from a state beside an equilibrium, with the linear prediction beside them.
 //!
 //! [`knocked`] makes the state, [`horizon`] says how long to follow its path, [`Course::new`] compares the path with what the
-//! linear part predicts, [`drawing`] draws both, [`sentences`] say what came of it, [`csv`] and [`rows`] save it. Pure
+//! linear part predicts, [`drawing`] draws both, [`sentences`] say what came of it, [`rows`] are what is saved of it. Pure
 //! functions of a path that somebody else followed; all of it is numerical. `predict` has the linear part's path.
 
 mod bands;
-mod csv;
 mod predict;
+mod rows;
 mod words;
 
 pub use bands::{bands, drawing, signs};
-pub use csv::{csv, headings, rows};
+pub use rows::{headings, rows};
 pub use words::sentences;
 
 use crate::analysis::equilibria::Equilibrium;

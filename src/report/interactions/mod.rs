@@ -2,14 +2,14 @@
 //! and number.
 //!
 //! [`interactions`] takes them from what was said of the equilibrium, [`drawing`] shows a part of the table, [`text()`] and
-//! [`csv`] save all of it, [`sentences`] say what is telling in it. A sign is a plus, a minus, a 0 or a question mark, never a colour; whether it is proved is told
-//! apart, see [`Sign`]. `table` lays out.
+//! [`rows`] have all of it for saving, [`sentences`] say what is telling in it. A sign is a plus, a minus, a 0 or a question
+//! mark, never a colour; whether it is proved is told apart, see [`Sign`]. `table` lays out.
 
-mod csv;
+mod rows;
 mod table;
 mod words;
 
-pub use csv::{csv, headings, rows};
+pub use rows::{headings, rows};
 pub use table::{drawing, signs, text, visible};
 pub use words::sentences;
 

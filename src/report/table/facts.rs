@@ -115,6 +115,11 @@ impl Case<'_> {
         self.with(place, |row| label(row, ascii)).unwrap_or_default()
     }
 
+    /// The same without its sign.
+    pub fn in_words(&self, place: usize) -> String {
+        self.with(place, in_words).unwrap_or_default()
+    }
+
     /// Where today's stocks lead, and what the search came to.
     pub fn overall(&self) -> String {
         words::verdict(&self.solved.equilibria).1
@@ -164,6 +169,10 @@ fn label(row: &Row<'_>, ascii: bool) -> String {
     let look = row.linear().map_or(kinds::UNKNOWN, |linear| kinds::of(linear.kind));
     let glyph = if ascii { look.ascii } else { look.glyph };
     let winds = if look.spirals { String::from(kinds::SPIRALS) } else { String::new() };
+    format!("{glyph}{winds} {}", in_words(row))
+}
+
+fn in_words(row: &Row<'_>) -> String {
     let what = match (row.linear(), row.equilibrium.proven) {
         (None, proven) => format!("{}; {}", words::proof(proven), row.why().unwrap_or("there is no linear part")),
         (Some(linear), false) => format!("{}, {}", kinds::of(linear.kind).word, words::proof(false)),
@@ -172,8 +181,8 @@ fn label(row: &Row<'_>, ascii: bool) -> String {
         }
         (Some(linear), true) => format!("proved, type numerical: {}", kinds::of(linear.kind).word),
     };
-    let name = if row.id().is_empty() { String::new() } else { format!(" {},", row.id()) };
-    format!("{glyph}{winds}{name} {what}")
+    let name = if row.id().is_empty() { String::new() } else { format!("{}, ", row.id()) };
+    format!("{name}{what}")
 }
 
 /// Who is there, and how many.

@@ -10,15 +10,15 @@ use super::sheet::Sheet;
 use super::text::Page;
 use super::{Scene, Solved, Table, provenance, scene, words};
 
+/// What a document needs that takes a table in.
+pub(in crate::report) const HEAD: &str = "% Needs \\usepackage{booktabs}.";
+
 /// Letters across a page.
 const WIDTH: usize = 84;
 
 /// The table, ending in a line break; the width and colour of the page are not used.
 pub fn latex(table: &Table<'_>, page: Page) -> String {
-    let mut parts = vec![
-        "% Needs \\usepackage{booktabs}.".to_owned(),
-        format!("\\subsection*{{{}}}", escaped(&table.model.title.value, &page)),
-    ];
+    let mut parts = vec![HEAD.to_owned(), format!("\\subsection*{{{}}}", escaped(&table.model.title.value, &page))];
     parts.extend(table.model.note.iter().map(|note| escaped(note, &page)));
     parts.push(heading(table, &page));
     if table.interrupted {
@@ -41,11 +41,14 @@ pub fn latex(table: &Table<'_>, page: Page) -> String {
 }
 
 pub(in crate::report) fn heading(table: &Table<'_>, page: &Page) -> String {
-    let mut rows = Vec::new();
-    for fact in provenance::facts(table, plain) {
-        rows.extend(fact.texts.iter().map(|text| format!("{} & {} \\\\\n", fact.label, escaped(text, page))));
-    }
-    tabular("lp{0.75\\linewidth}", "", &rows.concat())
+    let all = provenance::facts(table, plain);
+    facts(all.iter().flat_map(|fact| fact.texts.iter().map(|text| (fact.label, text.as_str()))), page)
+}
+
+/// A table of labels and texts.
+pub(in crate::report) fn facts<'f>(all: impl Iterator<Item = (&'f str, &'f str)>, page: &Page) -> String {
+    let rows = all.map(|(label, text)| format!("{label} & {} \\\\\n", escaped(text, page)));
+    tabular("lp{0.75\\linewidth}", "", &rows.collect::<String>())
 }
 
 fn scenario(table: &Table<'_>, scene: &Scene, solved: &Solved, ids: &[String], page: &Page) -> Vec<String> {

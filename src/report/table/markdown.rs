@@ -36,11 +36,15 @@ pub fn markdown(table: &Table<'_>, page: Page) -> String {
 }
 
 pub(in crate::report) fn heading(table: &Table<'_>, page: &Page) -> String {
-    let mut lines = vec!["| what | how |".to_owned(), "|:--|:--|".to_owned()];
-    for fact in provenance::facts(table, plain) {
-        lines.extend(fact.texts.iter().map(|text| format!("| {} | {} |", fact.label, escaped(text, page))));
-    }
-    lines.join("\n")
+    let all = provenance::facts(table, plain);
+    facts(all.iter().flat_map(|fact| fact.texts.iter().map(|text| (fact.label, text.as_str()))), page)
+}
+
+/// A table of labels and texts.
+pub(in crate::report) fn facts<'f>(all: impl Iterator<Item = (&'f str, &'f str)>, page: &Page) -> String {
+    let top = ["| what | how |".to_owned(), "|:--|:--|".to_owned()];
+    let lines = all.map(|(label, text)| format!("| {label} | {} |", escaped(text, page)));
+    top.into_iter().chain(lines).collect::<Vec<_>>().join("\n")
 }
 
 fn scenario(table: &Table<'_>, scene: &Scene, solved: &Solved, ids: &[String], page: &Page) -> Vec<String> {

@@ -1,11 +1,7 @@
 //! A course as numbers, for saving.
 
-use serde_json::Value;
-
 use super::Course;
 use crate::model::Model;
-use crate::report::sketch::Style;
-use crate::report::table::line;
 
 /// What the numbers of a row are: the time, each species, and where there is one what is predicted of each.
 pub fn headings(course: &Course, model: &Model) -> Vec<String> {
@@ -29,15 +25,4 @@ pub fn rows(course: &Course) -> Vec<Vec<Option<f64>>> {
         std::iter::once(Some(time)).chain(state.iter().copied().map(Some)).chain(predicted).collect()
     };
     course.times.iter().zip(&course.states).enumerate().map(row).collect()
-}
-
-/// The same as CSV (RFC 4180): a line of headings, then the rows; numbers read back exactly.
-pub fn csv(course: &Course, model: &Model, style: Style) -> String {
-    let head: Vec<Value> = headings(course, model).into_iter().map(Value::from).collect();
-    let mut text = line(&head, style);
-    for row in rows(course) {
-        let values: Vec<Value> = row.into_iter().map(|x| x.map_or(Value::Null, Value::from)).collect();
-        text.push_str(&line(&values, style));
-    }
-    text
 }

@@ -4,8 +4,7 @@ use serde_json::Value;
 
 use super::{Effects, Interactions, Sign};
 use crate::model::Model;
-use crate::report::sketch::Style;
-use crate::report::table::line;
+use crate::report::table::exact;
 
 /// What the fields of a row are.
 pub fn headings() -> [&'static str; 6] {
@@ -27,17 +26,11 @@ pub fn rows(table: &Interactions, model: &Model) -> Vec<[Value; 6]> {
             (Sign::Negative, proved) => ("minus", sureness(proved)),
             (Sign::Zero, proved) => ("zero", sureness(proved)),
         };
-        [kind.into(), symbol(k / n), symbol(k % n), effect.number.into(), sign.into(), sure.into()]
+        [kind.into(), symbol(k / n), symbol(k % n), exact(effect.number), sign.into(), sure.into()]
     };
     table.entries.iter().enumerate().map(one).collect()
 }
 
 fn sureness(proved: bool) -> &'static str {
     if proved { "proved" } else { "numerical" }
-}
-
-/// The same as CSV (RFC 4180).
-pub fn csv(table: &Interactions, model: &Model, style: Style) -> String {
-    let head = line(&headings().map(Value::from), style);
-    rows(table, model).iter().fold(head, |text, row| text + &line(row, style))
 }
