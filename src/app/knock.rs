@@ -273,6 +273,9 @@ const SAVED_ROWS: usize = 10;
 /// Times that a report lists.
 const LISTED: usize = 40;
 
+/// How sure the rows are.
+const NUMBERS: &str = "numerical: the path as it was followed, and where predicted is said, what the linear part has";
+
 /// The path and what the linear part predicts of it, one row a time; `None` where they are not known, or the scenario is
 /// being searched.
 pub fn rows(app: &App) -> Option<Rows> {
@@ -284,6 +287,7 @@ pub fn rows(app: &App) -> Option<Rows> {
     let mut facts = saved::facts(app, study, &selected)?;
     facts.push(Fact::of_text("knock", "knock", blow.at_length()));
     facts.push(saved::state("after", "just after it", &selected, &blow.state));
+    facts.push(Fact::of_text("numbers", "numbers", NUMBERS));
     let value = |x: Option<f64>| x.map_or(Value::Null, |x| (x + 0.0).into());
     let row = |row: Vec<Option<f64>>| row.into_iter().map(value).collect();
     Some(Rows {

@@ -1,4 +1,4 @@
-//! What is saved of the selected equilibrium has in common: where it comes from, above every form of it.
+//! What all that is saved of the selected equilibrium has in common: where it comes from, above every form of it.
 //!
 //! [`facts`] says which model, scenario and equilibrium it is of, [`text`] puts them above what a screen has to say as text.
 //! What the rows are is up to the screens: `knock` and `interactions`.
@@ -36,7 +36,10 @@ pub fn facts(app: &App, study: &Study, selected: &Selected<'_>) -> Option<Vec<Fa
         columns: None,
     };
     let mut facts = provenance(&table, &path(study), &scene, selected.solved);
-    facts.push(Fact::of_text("equilibrium", "equilibrium", selected.in_words(study)));
+    let words = selected.in_words(study);
+    let id = Exact::Text(selected.id(study).to_owned());
+    facts.push(Fact { key: "equilibrium", label: "equilibrium", text: words.clone(), exact: id });
+    facts.push(Fact { exact: Exact::Text(words), ..Fact::of_text("equilibrium_in_words", "", "") });
     facts.push(state("state", "state", selected, &selected.equilibrium.state));
     Some(facts)
 }

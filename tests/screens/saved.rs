@@ -31,7 +31,7 @@ fn model(name: &str) -> String {
 }
 
 fn sha256(text: &str) -> String {
-    Sha256::digest(text).iter().map(|byte| format!("{byte:02x}")).collect()
+    format!("{:x}", Sha256::digest(text))
 }
 
 /// The screen after a knock to S_1 alone, for a name.
@@ -81,7 +81,8 @@ fn has_its_source(head: &StringRecord, record: &StringRecord, name: &str) {
     assert_eq!(field(head, record, "sha256"), sha256(&model(name)));
     assert_eq!(field(head, record, "program"), concat!("restpoint ", env!("CARGO_PKG_VERSION")));
     assert!(field(head, record, "file").ends_with("m.yaml"));
-    assert_eq!(field(head, record, "equilibrium"), "E4, stable node, proved");
+    assert_eq!(field(head, record, "equilibrium"), "E4");
+    assert_eq!(field(head, record, "equilibrium_in_words"), "E4, stable node, proved");
     assert_eq!(field(head, record, "time"), "continuous, in yr");
     near(&number(field(head, record, "state S_1")), 4.7);
     near(&number(field(head, record, "state C")), 3.0);
@@ -97,6 +98,7 @@ fn a_knock_as_csv_has_every_time_and_its_source() {
             has_its_source(&head, record, name);
             assert_eq!(field(&head, record, "knock"), format!("half of {name} taken (-50 %)"));
             assert_eq!(field(&head, record, "set"), "");
+            assert!(field(&head, record, "numbers").starts_with("numerical: "));
             let of = |name: &str| number(field(&head, record, name));
             let fades = (-4.7 * of("time [yr]").as_f64().unwrap()).exp();
             near(&of("after S_1"), 2.35);
@@ -139,7 +141,7 @@ fn json_of(text: &str, name: &str, what: &str) -> Value {
     assert_eq!(all["tool"], json!({"name": "restpoint", "version": env!("CARGO_PKG_VERSION")}));
     assert_eq!(all["model"], json!({"title": name, "sha256": sha256(&model(name)), "time": "continuous"}));
     assert_eq!((&all["what"], &all["scenario"]), (&json!(what), &json!(name)));
-    assert_eq!((&all["equilibrium"], &all["set"]), (&json!("E4, stable node, proved"), &json!({})));
+    assert_eq!((&all["equilibrium"], &all["set"]), (&json!("E4"), &json!({})));
     near(&all["state"]["S_1"], 4.7);
     assert!(all["said"].as_array().is_some_and(|said| !said.is_empty()));
     assert!(all["caution"].as_str().is_some_and(|text| text.starts_with("These are local results")));

@@ -1,7 +1,7 @@
 //! After a knock: abundances against time from a state beside an equilibrium, with the linear prediction beside them.
 //!
 //! [`knocked`] makes the state, [`horizon`] says how long to follow its path, [`Course::new`] compares the path with what the
-//! linear part predicts, [`drawing`] draws both, [`sentences`] say what came of it, [`rows`] are what is saved of it. Pure
+//! linear part predicts, [`drawing`] draws both, [`sentences`] say what came of it, [`rows()`] are what is saved of it. Pure
 //! functions of a path that somebody else followed; all of it is numerical. `predict` has the linear part's path.
 
 mod bands;

@@ -2,7 +2,7 @@
 //! and number.
 //!
 //! [`interactions`] takes them from what was said of the equilibrium, [`drawing`] shows a part of the table, [`text()`] and
-//! [`rows`] have all of it for saving, [`sentences`] say what is telling in it. A sign is a plus, a minus, a 0 or a question
+//! [`rows()`] have all of it for saving, [`sentences`] say what is telling in it. A sign is a plus, a minus, a 0 or a question
 //! mark, never a colour; whether it is proved is told apart, see [`Sign`]. `table` lays out.
 
 mod rows;

@@ -2,7 +2,7 @@
 //!
 //! [`Rows`] is plain data: what the rows are of, headings, values. [`written`] makes CSV, JSON, Markdown and LaTeX of it, with
 //! the escaping and the tables of [`table`](super::table); [`heading`] what a text of the screen's own has above it.
-//! [`provenance`] makes the facts that are the same for all. Numbers are exact in CSV and JSON, rounded for people. To save
+//! [`provenance()`] makes the facts that are the same for all. Numbers are exact in CSV and JSON, rounded for people. To save
 //! something else, make its `Rows`; nothing here knows what they mean.
 
 mod files;
