@@ -5,6 +5,7 @@
 
 use std::sync::Arc;
 
+use super::geometry::Area;
 use super::study::Slot;
 use super::task::{Found, Painting, Task};
 use super::{App, Screen, Study};
@@ -85,7 +86,13 @@ fn search(slot: &Slot, budget: f64) -> Task {
 
 /// Columns and rows of the sketch on the present screen.
 pub fn sketch_size(app: &App, study: &Study) -> Size {
-    let area = match app.screen {
+    let area = sketch_area(app, study);
+    Size { columns: area.columns.into(), rows: area.rows.into() }
+}
+
+/// Where the sketch of the slot that is looked at stands on the present screen.
+pub fn sketch_area(app: &App, study: &Study) -> Area {
+    match app.screen {
         Screen::SideBySide => {
             let slots = beside::shown(study, app.size);
             let parts = beside::parts(app.size, slots.len(), beside::ids(study, app.size).len());
@@ -94,8 +101,7 @@ pub fn sketch_size(app: &App, study: &Study) -> Size {
         }
         Screen::Values => geometry::values(app.size, study.count()).sketch,
         _ => geometry::equilibria(app.size, study.count()).sketch,
-    };
-    Size { columns: area.columns.into(), rows: area.rows.into() }
+    }
 }
 
 /// What the sketch of a slot is; `None` before anything is found.

@@ -4,8 +4,9 @@ use unicode_width::UnicodeWidthStr;
 
 use super::paint::Page;
 use super::sketch::Shown;
-use crate::app::geometry::{Area, equilibria};
+use crate::app::geometry::Area;
 use crate::app::keymap::{of, place};
+use crate::app::wants::sketch_area;
 use crate::app::{App, Entry, Purpose, Screen};
 use crate::report::grid::Ink;
 
@@ -39,8 +40,7 @@ pub(super) fn help(app: &App, page: &mut Page<'_>, area: Area, from: usize) {
 /// The signs of the sketch that is below, with their meanings.
 fn signs(app: &App, page: &Page<'_>) -> Vec<(String, String)> {
     let Some(study) = app.study.as_ref().filter(|_| has_sketch(app.screen)) else { return Vec::new() };
-    let area = equilibria(app.size, study.count()).sketch;
-    Shown::new(app, study, study.current, area).map_or_else(Vec::new, |shown| shown.signs(page))
+    Shown::new(app, study, study.current, sketch_area(app, study)).map_or_else(Vec::new, |shown| shown.signs(page))
 }
 
 fn has_sketch(screen: Screen) -> bool {

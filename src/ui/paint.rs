@@ -70,9 +70,12 @@ impl<'b> Page<'b> {
 
     /// Blanks in all of an area.
     pub(super) fn clear(&mut self, area: Area) {
-        let blanks = " ".repeat(area.columns.into());
         for row in 0..area.rows {
-            self.text(area, [0, row], &blanks, Ink::Plain);
+            for column in 0..area.columns {
+                if let Some(cell) = self.buffer.cell_mut((area.x + column, area.y + row)) {
+                    cell.reset();
+                }
+            }
         }
     }
 

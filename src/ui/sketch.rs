@@ -7,7 +7,7 @@ use crate::app::task::{Answer, Painting, Task};
 use crate::app::wants::{painting, path};
 use crate::app::{App, Study};
 use crate::report::grid::Ink;
-use crate::report::sketch::{Extras, Picture, Size, View, came_from, drawing, ends, signs_used};
+use crate::report::sketch::{Extras, Picture, Size, View, came_from, drawing, ends, held, signs_used};
 
 /// What is drawn of a slot, as far as it is known.
 pub(super) struct Shown<'s> {
@@ -78,7 +78,18 @@ impl<'s> Shown<'s> {
             page.text(area, [8, area.rows / 2], "drawing", Ink::Faint);
             return;
         };
-        page.grid(area, &drawing(&view, picture, &self.extras(), self.size, page.style));
+        let grid = drawing(&view, picture, &self.extras(), self.size, page.style);
+        page.grid(area, &grid);
+        // Beside the name of the axis across, in the last row.
+        if let (Some(held), Some(last)) = (held(&view), area.rows.checked_sub(1)) {
+            let name = grid
+                .labels
+                .iter()
+                .find(|label| label.row == usize::from(last))
+                .map_or(area.columns, |label| label.column as u16);
+            let room = Area { columns: name.saturating_sub(2), ..area };
+            page.text(room, [0, last], &held, Ink::Faint);
+        }
     }
 
     /// Where the paths from the point lead and come from, in words; empty where there is no point.

@@ -3,8 +3,9 @@
 use super::{entry, interactions, knock, record, session, sketch, values};
 use crate::app::action::{Action, Step};
 use crate::app::beside::ids;
-use crate::app::geometry::{equilibria, listed, values as parts_of_values};
-use crate::app::{App, Dialog, Effect, Screen};
+use crate::app::geometry::{equilibria, frame, listed, values as parts_of_values};
+use crate::app::keymap::{Place, of};
+use crate::app::{App, Dialog, Effect, Hold, Screen};
 
 /// More numbers than an equilibrium has lines of; the screen shows the last where that is passed.
 const MOST_NUMBERS: usize = 200;
@@ -118,9 +119,14 @@ pub(super) fn reload(app: &mut App) {
 /// Through the list of what is open.
 fn walk(app: &mut App, step: Step) {
     let page = usize::from(app.size.rows / 2).max(1);
+    // Of a text that fills the screen: what it has room for below its heading, and the lines of help.
+    let room = usize::from(frame(app.size).body.rows).saturating_sub(2);
+    let help = help_lines(app).saturating_sub(room);
     match (&mut app.dialog, app.screen, &mut app.study) {
-        (Some(Dialog::Help { from }), ..) => *from = stepped(*from, usize::MAX, page, step),
-        (Some(Dialog::Message { from, lines, .. }), ..) => *from = stepped(*from, lines.len(), page, step),
+        (Some(Dialog::Help { from }), ..) => *from = stepped(*from, help, page, step),
+        (Some(Dialog::Message { from, lines, .. }), ..) => {
+            *from = stepped(*from, (lines.len() + 1).saturating_sub(room), page, step);
+        }
         (None, Screen::Chooser, _) => {
             app.chooser.chosen = stepped(app.chooser.chosen, app.chooser.entries.len(), page, step);
         }
@@ -143,6 +149,19 @@ fn walk(app: &mut App, step: Step) {
         }
         _ => {}
     }
+}
+
+/// Signs that a sketch has at most, with the line above them.
+const MOST_SIGNS: usize = 14;
+
+/// How many lines the help of the screen has, at most.
+fn help_lines(app: &App) -> usize {
+    let below = match app.hold() {
+        Some(Hold::Point) => Place::Pointing,
+        Some(Hold::Window) => Place::Dragging,
+        None => Place::On(app.screen),
+    };
+    of(below).count() + MOST_SIGNS
 }
 
 /// A place in a list after a step; what lies behind its end is brought back when the list is known.

@@ -119,7 +119,7 @@ fn complete(found: &Equilibria) -> &'static str {
 }
 
 /// What the species that are not along an axis are held at; `None` where there are none.
-pub(super) fn held(view: &View<'_>) -> Option<String> {
+pub fn held(view: &View<'_>) -> Option<String> {
     let from = match view.slice.from {
         Held::Nothing => return None,
         Held::Equilibrium(index) => format!("as at {}", view.ids.get(index).map_or("", String::as_str)),

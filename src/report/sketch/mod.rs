@@ -1,7 +1,7 @@
 //! `restpoint sketch`: the direction field of a scenario in characters.
 //!
 //! [`View`] says what is looked at, [`Plot`] where in a given size its cells are, [`Picture`] holds the numbers for them,
-//! [`draw`] chooses what stands in each cell, [`drawing`] lays it between its axes as a grid, [`text()`] writes it all out
+//! [`draw`] chooses what stands in each cell, [`drawing()`] lays it between its axes as a grid, [`text()`] writes it all out
 //! with a legend. A screen takes the grid, [`signs_used`] for a line below it, and draws [`Extras`] over the picture: what is
 //! selected, a point that moves, the paths from and to it; [`ends`] and [`came_from`] say in a sentence where those lead. Each
 //! is a pure function of what it is given. To draw something more: a [`Mark`] in `signs`, its place in `canvas`, its meaning
@@ -23,6 +23,7 @@ pub(super) use drawing::fitted;
 pub use drawing::{drawing, place_in_drawing, point_in_drawing};
 pub(super) use ending::entry;
 pub use ending::{came_from, ends};
+pub use legend::held;
 pub use meanings::signs_used;
 pub use plot::{LARGEST, Plot, SMALLEST, Size, legend_rows};
 pub use signs::{Growth, Mark, flow, spacing};

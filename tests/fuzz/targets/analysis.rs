@@ -76,12 +76,7 @@ fn shown(table: &Table<'_>) {
     json(table);
 }
 
-fn drawn(
-    model: &Model,
-    prepared: &Prepared,
-    scenes: &[Scene],
-    names: &Names,
-) {
+fn drawn(model: &Model, prepared: &Prepared, scenes: &[Scene], names: &Names) {
     let found: Vec<&Solved> = scenes.iter().filter_map(|scene| scene.outcome.as_ref().ok()).collect();
     let axes = Slice::axes(model);
     let window = sketch::window(model, &prepared.bounds, &found, axes);
