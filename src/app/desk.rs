@@ -4,7 +4,7 @@
 //! overtakes one that is under way. A job that nobody wants any more is forgotten and told to stop; its answer is dropped.
 
 use super::Effect;
-use super::task::{Answer, Task};
+use super::task::{Answer, Painting, Task};
 use crate::analysis::equilibria::Progress;
 
 /// Number of a job; later jobs have higher ones.
@@ -86,6 +86,19 @@ impl Desk {
     /// The answer to a task.
     pub fn known(&self, task: &Task) -> Option<&Answer> {
         self.known.iter().rev().find(|(known, _)| known == task).map(|(_, answer)| answer)
+    }
+
+    /// The latest sketch of the same states in the same cells that is known, whatever else has changed: what can be shown until
+    /// the one that is wanted is there.
+    pub fn before(&self, wanted: &Painting) -> Option<&Painting> {
+        self.known.iter().rev().find_map(|(task, answer)| match (task, answer) {
+            (Task::Paint(painting), Answer::Painted(Some(_)))
+                if painting.scene == wanted.scene && painting.plot == wanted.plot =>
+            {
+                Some(painting)
+            }
+            _ => None,
+        })
     }
 
     /// What is under way.

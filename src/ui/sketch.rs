@@ -9,9 +9,14 @@ use crate::app::{App, Study};
 use crate::report::grid::Ink;
 use crate::report::sketch::{Extras, Picture, Size, View, came_from, drawing, ends, held, signs_used};
 
+/// Said while a sketch is being computed.
+const LATE: &str = "drawing";
+
 /// What is drawn of a slot, as far as it is known.
 pub(super) struct Shown<'s> {
     painting: Painting,
+    /// Whether it is of a moment ago: what is wanted is being computed.
+    is_late: bool,
     app: &'s App,
     study: &'s Study,
     slot: usize,
@@ -22,7 +27,10 @@ impl<'s> Shown<'s> {
     /// Of a slot, for an area; `None` before anything is found.
     pub(super) fn new(app: &'s App, study: &'s Study, slot: usize, area: Area) -> Option<Self> {
         let size = Size { columns: area.columns.into(), rows: area.rows.into() };
-        Some(Self { painting: painting(study, slot, size)?, app, study, slot, size })
+        let wanted = painting(study, slot, size)?;
+        let is_late = app.desk.known(&Task::Paint(wanted.clone())).is_none();
+        let before = if is_late { app.desk.before(&wanted).cloned() } else { None };
+        Some(Self { painting: before.unwrap_or(wanted), is_late, app, study, slot, size })
     }
 
     fn view(&self) -> Option<View<'_>> {
@@ -75,11 +83,14 @@ impl<'s> Shown<'s> {
     /// Draws it; says that it is under way where it is.
     pub(super) fn draw(&self, page: &mut Page<'_>, area: Area) {
         let (Some(view), Some(picture)) = (self.view(), self.picture()) else {
-            page.text(area, [8, area.rows / 2], "drawing", Ink::Faint);
+            page.text(area, [8, area.rows / 2], LATE, Ink::Faint);
             return;
         };
         let grid = drawing(&view, picture, &self.extras(), self.size, page.style);
         page.grid(area, &grid);
+        if self.is_late {
+            page.text(area, [area.columns.saturating_sub(LATE.len() as u16), 0], LATE, Ink::Faint);
+        }
         // Beside the name of the axis across, in the last row.
         if let (Some(held), Some(last)) = (held(&view), area.rows.checked_sub(1)) {
             let name = grid

@@ -37,19 +37,19 @@ fn tables_are_those_worked_out_by_hand() {
     )
     .at([60, 20]);
     bench.press("i<End>");
-    bench.shows(&["S            -4.000       -4.000\n", "C            +6.000            0\n"]);
+    bench.shows(&["S                -4.000       -4.000\n", "C                +6.000            0\n"]);
     let said = "One more of C lowers the growth of S at once (proved); adding C steadily lowers S in the long run (numerical).";
     assert!(words(&bench).contains(said), "{}", bench.text());
     bench.press("<Tab>");
-    bench.shows(&["S                 0      -0.1667\n", "C           +0.2500      +0.1667\n"]);
+    bench.shows(&["S                     0      -0.1667\n", "C               +0.2500      +0.1667\n"]);
     bench.press("<Tab>");
     bench.shows(&["Direct: "]);
     // Of S alone, at 10: who is there, or all.
     bench.press("<Up>");
-    bench.shows(&["those present", "S            -10.00\n"]);
+    bench.shows(&["those present", "S                -10.00\n"]);
     bench.hides(&["C absent"]);
     bench.press("t");
-    bench.shows(&["all species", "S               -10.00       -10.00\n", "C absent             0       +6.000\n"]);
+    bench.shows(&["all species", "S                -10.00       -10.00\n", "C absent              0       +6.000\n"]);
     bench.press("<Up>t");
     bench.shows(&["Nobody is there"]);
 }

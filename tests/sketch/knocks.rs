@@ -208,7 +208,8 @@ fn effects_are_those_by_hand() {
     check(Effects::Net, [-1.0 / 15.0, 2.0 / 15.0, 2.0 / 15.0, -1.0 / 15.0], false);
     let text = interactions::text(&effects(&model, 3, Effects::Net, Who::Present), &model.model, Style::Ascii);
     let lines: Vec<Vec<&str>> = text.lines().skip(1).map(|line| line.split_whitespace().collect()).collect();
-    assert_eq!(lines[..3], [vec!["x", "y"], vec!["x", "-0.06667", "+0.1333"], vec!["y", "+0.1333", "-0.06667"]]);
+    let heads = vec!["answer", "of", "press", "on", "x", "press", "on", "y"];
+    assert_eq!(lines[..3], [heads, vec!["x", "-0.06667", "+0.1333"], vec!["y", "+0.1333", "-0.06667"]]);
 }
 
 #[test]
@@ -276,7 +277,7 @@ fn a_large_table_scrolls_and_says_where_it_is() {
         entries,
         nearly_singular: false,
     };
-    let size = Size { columns: 60, rows: 20 };
+    let size = Size { columns: 64, rows: 20 };
     assert_eq!(interactions::visible(&table, &model.model, size), [16, 4]);
     for ([row, column], said, first) in [
         ([0, 0], "rows 1 to 16, columns 1 to 4 of 30", "+1.000"),

@@ -11,11 +11,15 @@ use crate::report::table::human;
 /// Characters of a column, with a blank between two.
 const COLUMN: usize = 13;
 /// Characters of a row's head, at least and at most.
-const HEAD: [usize; 2] = [6, 18];
+const HEAD: [usize; 2] = [10, 18];
 /// The title and the heads of the columns.
 const ABOVE: usize = 2;
 /// What is to be said below.
 const BELOW: usize = 2;
+/// What a row is.
+const ANSWER: &str = "answer of";
+/// What a column is.
+const PRESS: &str = "press on";
 /// Said after the symbol of an absent species.
 const ABSENT: &str = " absent";
 
@@ -38,8 +42,14 @@ pub fn drawing(table: &Interactions, model: &Model, from: [usize; 2], size: Size
         }
     };
     put(&mut grid, 0, 0, &title(table, model, size.columns), Ink::Strong);
+    if !table.species.is_empty() {
+        put(&mut grid, 0, 1, ANSWER, Ink::Faint);
+    }
     for (place, column) in part.columns.clone().enumerate() {
-        let text = fitted(&symbol(table, model, column), COLUMN - 1, style);
+        let symbol = symbol(table, model, column);
+        // A long symbol needs all the room; the heads beside it, and the title, say what a column is.
+        let pressed = format!("{PRESS} {symbol}");
+        let text = fitted(if pressed.width() < COLUMN { &pressed } else { &symbol }, COLUMN - 1, style);
         let at = part.head + (place + 1) * COLUMN - text.width();
         put(&mut grid, at, 1, &text, Ink::Strong);
     }
