@@ -9,6 +9,8 @@ use crate::app::{App, Study};
 use crate::report::grid::Ink;
 use crate::report::sketch::{Extras, Picture, Size, View, came_from, drawing, ends, held, signs_used};
 
+/// Columns that what is held needs to say anything at all.
+const HELD: u16 = 16;
 /// Said while a sketch is being computed.
 const LATE: &str = "drawing";
 
@@ -99,7 +101,9 @@ impl<'s> Shown<'s> {
                 .find(|label| label.row == usize::from(last))
                 .map_or(area.columns, |label| label.column as u16);
             let room = Area { columns: name.saturating_sub(2), ..area };
-            page.text(room, [0, last], &held, Ink::Faint);
+            if room.columns >= HELD {
+                page.text(room, [0, last], &held, Ink::Faint);
+            }
         }
     }
 
