@@ -10,7 +10,7 @@ use crate::report::grid::Ink;
 use crate::report::sketch::{Extras, Picture, Size, View, came_from, drawing, ends, held, signs_used};
 
 /// Columns that what is held needs to say anything at all.
-const HELD: u16 = 16;
+const HELD: u16 = 15;
 /// Said while a sketch is being computed.
 const LATE: &str = "drawing";
 
