@@ -120,7 +120,7 @@ impl Case<'_> {
         self.with(place, in_words).unwrap_or_default()
     }
 
-    /// Where today's stocks lead, and what the search came to.
+    /// What the search came to.
     pub fn overall(&self) -> String {
         words::verdict(&self.solved.equilibria).1
     }
