@@ -166,7 +166,7 @@ proptest! {
     fn only_bytes_are_added_and_the_file_means_what_was_meant(
         written in written(),
         base in 0..NAMES.len(),
-        name in "[^\\p{C}\\p{Z}]([^\\p{C}]{0,12}[^\\p{C}\\p{Z}])?",
+        name in "[^\\p{C}\\p{Z}]([^\\p{C}\\p{Zl}\\p{Zp}]{0,12}[^\\p{C}\\p{Z}])?",
         value in any::<f64>().prop_filter("finite", |value| value.is_finite()),
     ) {
         let text = written.text();
