@@ -13,4 +13,5 @@ pub mod measures;
 pub mod passage;
 pub mod paths;
 pub mod prepare;
+pub mod response;
 pub mod subject;

@@ -78,7 +78,7 @@ impl Face {
 }
 
 /// What nodes are where all that do not move are 0.
-fn restricted(graph: &mut Graph, nodes: &[NodeId], moves: &[bool]) -> Vec<AtZero> {
+pub(in crate::analysis) fn restricted(graph: &mut Graph, nodes: &[NodeId], moves: &[bool]) -> Vec<AtZero> {
     let mut known: Vec<AtZero> = nodes.iter().map(|&node| AtZero::Is(node)).collect();
     for absent in (0..moves.len()).filter(|&i| !moves[i]) {
         let live: Vec<NodeId> = known.iter().copied().filter_map(value).collect();

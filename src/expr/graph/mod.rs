@@ -23,6 +23,7 @@ pub mod read;
 pub mod saturate;
 mod slope;
 pub mod substitute;
+pub mod widen;
 
 /// Index of a node in its [`Graph`]; operands have smaller indices than what uses them.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, Hash, PartialOrd, Ord)]

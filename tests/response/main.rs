@@ -1,0 +1,1 @@
+//! The response to a control, against closed forms and published thresholds.
