@@ -30,6 +30,8 @@ fn the_share_of_faces_is_shown() {
     let mut bench = Bench::of(TWO);
     bench.hold();
     bench.app.study.as_mut().unwrap().slots[1].found = None;
+    // With more time it is another search, of which nothing is known.
+    bench.app.budget += 1.0;
     bench.tell(Msg::Resumed);
     let id = bench.app.desk.search().expect("a search is under way").id;
     bench.tell(Msg::Advanced(id, Progress { faces: 38, boxes: 1204, share: Progress::WHOLE / 64 * 38 }));
