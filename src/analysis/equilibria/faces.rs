@@ -68,14 +68,13 @@ impl Faces {
     /// The next face; `None` when there are no more, or when `stop` said so, and then the walk is not done.
     pub(super) fn next(&mut self, graph: &mut Graph, stop: &dyn Fn() -> bool) -> Option<Face> {
         while let Some(part) = self.stack.pop() {
-            match self.branch(graph, &part) {
-                Some(i) => self.split(graph, part, i, stop)?,
-                None => {
-                    self.passed += part.share;
-                    if let Some(face) = leaf(&part) {
-                        return Some(face);
-                    }
-                }
+            if let Some(i) = self.branch(graph, &part) {
+                self.split(graph, part, i, stop)?;
+                continue;
+            }
+            self.passed += part.share;
+            if let Some(face) = leaf(&part) {
+                return Some(face);
             }
         }
         None
