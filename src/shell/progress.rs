@@ -2,11 +2,12 @@
 
 use std::io::{self, IsTerminal, Write};
 use std::sync::Mutex;
-use std::sync::atomic::{AtomicUsize, Ordering};
+use std::sync::atomic::{AtomicU64, AtomicUsize, Ordering};
 use std::time::{Duration, Instant};
 
 use super::terminal;
 use crate::analysis::equilibria::Progress;
+use crate::report::progress::done;
 
 /// Work shorter than this is not spoken of.
 const PATIENCE: Duration = Duration::from_millis(500);
@@ -23,6 +24,7 @@ pub struct Meter {
     start: Instant,
     faces: AtomicUsize,
     boxes: AtomicUsize,
+    share: AtomicU64,
     /// When the line was last written.
     written: Mutex<Option<Instant>>,
 }
@@ -36,17 +38,28 @@ impl Meter {
             start: Instant::now(),
             faces: AtomicUsize::new(0),
             boxes: AtomicUsize::new(0),
+            share: AtomicU64::new(0),
             written: Mutex::new(None),
         }
     }
 
+    /// All work so far.
+    fn all(&self) -> Progress {
+        Progress {
+            faces: self.faces.load(Ordering::Relaxed),
+            boxes: self.boxes.load(Ordering::Relaxed),
+            share: self.share.load(Ordering::Relaxed),
+        }
+    }
+
     /// Takes account of some work, and says so from time to time.
-    pub fn add(&self, done: Progress) {
+    pub fn add(&self, work: Progress) {
         if !self.wanted {
             return;
         }
-        self.faces.fetch_add(done.faces, Ordering::Relaxed);
-        self.boxes.fetch_add(done.boxes, Ordering::Relaxed);
+        self.faces.fetch_add(work.faces, Ordering::Relaxed);
+        self.boxes.fetch_add(work.boxes, Ordering::Relaxed);
+        self.share.fetch_add(work.share, Ordering::Relaxed);
         // Another thread that is writing just now writes enough for both.
         let Ok(mut written) = self.written.try_lock() else { return };
         let is_due = match *written {
@@ -55,8 +68,7 @@ impl Meter {
         };
         if is_due {
             *written = Some(Instant::now());
-            let (faces, boxes) = (self.faces.load(Ordering::Relaxed), self.boxes.load(Ordering::Relaxed));
-            self.put(&format!("searching: {faces} faces, {boxes} boxes, {} s", self.start.elapsed().as_secs()));
+            self.put(&format!("searching: {}, {} s", done(self.all()), self.start.elapsed().as_secs()));
         }
     }
 

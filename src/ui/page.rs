@@ -6,6 +6,7 @@ use crate::app::geometry::{Area, SMALLEST};
 use crate::app::keymap::{Place, key_of, place};
 use crate::app::{App, Screen, Study};
 use crate::report::grid::Ink;
+use crate::report::progress::done;
 use unicode_width::UnicodeWidthStr;
 
 /// In place of all else where the terminal is too small.
@@ -50,8 +51,7 @@ pub(super) fn status(app: &App, page: &mut Page<'_>, area: Area) {
         };
         page.text(area, [0, 0], &text, ink);
     } else if let Some(job) = app.desk.search() {
-        let progress = job.progress;
-        let text = format!("searching: {} faces, {} boxes; Esc stops it", progress.faces, progress.boxes);
+        let text = format!("searching: {}; Esc stops it", done(job.progress));
         page.text(area, [0, 0], &text, Ink::Plain);
     } else if app.reading.is_some() {
         page.text(area, [0, 0], "reading", Ink::Plain);

@@ -3,6 +3,7 @@
 
 #![allow(clippy::panic, reason = "a test fails by panicking")]
 
+use std::sync::Mutex;
 use std::sync::atomic::{AtomicUsize, Ordering};
 
 use crate::common::Source;
@@ -10,7 +11,7 @@ use crate::common::families::{Family, examples, folds, linear, placed, scaled, w
 use crate::common::solve::{Method, meet, solve, solve_within};
 use crate::common::whole::Whole;
 use crate::common::workers::Two;
-use restpoint::analysis::equilibria::{Budget, Derivative, Equilibria, OneByOne, Probably};
+use restpoint::analysis::equilibria::{Budget, Derivative, Equilibria, OneByOne, Probably, Progress, Workers};
 
 fn check(family: &Family, found: &Equilibria) {
     let name = &family.name;
@@ -153,6 +154,26 @@ fn two_workers_find_the_same_as_one() {
         let budget = Budget { boxes: 50_000, stop: &|| false, workers: &Two, observer: None };
         let two = solve_within(&mut family.text.read(), 0, Method::Certified, &budget);
         assert_eq!((one.list, one.complete, one.boxes), (two.list, two.complete, two.boxes), "{}", family.name);
+    }
+}
+
+/// What is told of a search comes to what it has done: every face, and the whole of them.
+#[test]
+fn what_is_told_of_a_search_is_what_it_does() {
+    let workers: [&dyn Workers; 2] = [&OneByOne, &Two];
+    for family in [webs::web(5, 3), webs::webx(4, 2), linear::lotka_volterra(5, 9), webs::six_species()] {
+        for workers in workers {
+            let told = Mutex::new(Progress::default());
+            let observer = |work: Progress| {
+                let mut told = told.lock().unwrap();
+                told.faces += work.faces;
+                told.share += work.share;
+            };
+            let budget = Budget { boxes: 50_000, stop: &|| false, workers, observer: Some(&observer) };
+            let found = solve_within(&mut family.text.read(), 0, Method::Certified, &budget);
+            let told = *told.lock().unwrap();
+            assert_eq!((told.faces, told.share), (found.faces, Progress::WHOLE), "{}", family.name);
+        }
     }
 }
 

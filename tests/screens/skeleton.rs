@@ -1,5 +1,8 @@
 //! What holds of every screen.
 
+use restpoint::analysis::equilibria::Progress;
+use restpoint::app::Msg;
+
 use crate::bench::{Bench, SIZES};
 
 const TWO: &str = "\
@@ -19,6 +22,20 @@ fn a_model_is_read_and_searched_and_shown() {
         assert!(bench.text().is_ascii());
         assert_eq!(bench.text().lines().count(), usize::from(size[1]));
     }
+}
+
+/// How far a search has come stands in the last line but one.
+#[test]
+fn the_share_of_faces_is_shown() {
+    let mut bench = Bench::of(TWO);
+    bench.hold();
+    bench.app.study.as_mut().unwrap().slots[1].found = None;
+    // With more time it is another search, of which nothing is known.
+    bench.app.budget += 1.0;
+    bench.tell(Msg::Resumed);
+    let id = bench.app.desk.search().expect("a search is under way").id;
+    bench.tell(Msg::Advanced(id, Progress { faces: 38, boxes: 1204, share: Progress::WHOLE / 64 * 38 }));
+    assert_eq!(bench.status(), "searching: 38 faces (59 % of all), 1204 boxes; Esc stops it");
 }
 
 #[test]

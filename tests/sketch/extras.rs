@@ -53,7 +53,13 @@ fn check_model(name: &str, model: &Loaded) {
         slice.y.into_iter().for_each(|y| start[y] = point[1]);
         let [forwards, backwards] = [30.0, -30.0].map(|until| follow(&mut subject, &start, until, &|| false));
         let chosen = view.in_slice().last();
-        let extras = Extras { chosen, point: Some(point), forwards: Some(&forwards), backwards: Some(&backwards) };
+        let extras = Extras {
+            chosen,
+            point: Some(point),
+            forwards: Some(&forwards),
+            backwards: Some(&backwards),
+            ..Extras::default()
+        };
         for (columns, rows) in [(20, 8), (60, 20), (79, 24), (200, 50)] {
             let size = Size { columns, rows };
             let picture = Picture::new(&mut subject, &view, &Plot::of(size));

@@ -81,6 +81,8 @@ struct Arrived {
     bytes: Vec<u8>,
     /// When the last of them came.
     last: Instant,
+    /// When bytes came, and how many there were by then.
+    parts: Vec<(Instant, usize)>,
     is_closing: bool,
 }
 
@@ -115,6 +117,7 @@ impl Session {
             screen: vt100::Parser::new(count(rows), count(columns), 0),
             bytes: Vec::new(),
             last: Instant::now(),
+            parts: Vec::new(),
             is_closing: false,
         };
         let keyboard = pair.master.take_writer().unwrap();
@@ -174,21 +177,24 @@ impl Session {
     }
 
     /// Types, and waits for all that comes of it: when the last of it came and how many bytes it was; `None` where nothing
-    /// came. It is over when nothing has come for as long as `quiet`.
+    /// came. It is over when nothing has come for as long as `quiet`; what only tells of a search, in its own line, is none of
+    /// it.
     pub fn answer(&mut self, keys: &str, quiet: Duration) -> Option<(Duration, usize)> {
-        let before = self.last().1;
+        let before = self.look(Screen::clone);
+        let count = self.last().1;
         let start = Instant::now();
         self.keys(keys);
         let (arrived, changed) = &*self.arrived;
         let mut guard = arrived.lock().unwrap();
         loop {
-            let count = guard.bytes.len();
+            let now = guard.bytes.len();
             // A machine that is busy with other things may be late with the first byte.
-            let patience = if count == before { 5 * quiet } else { quiet };
-            let (later, _) = changed.wait_timeout_while(guard, patience, |now| now.bytes.len() == count).unwrap();
+            let patience = if now == count { 5 * quiet } else { quiet };
+            let (later, _) = changed.wait_timeout_while(guard, patience, |later| later.bytes.len() == now).unwrap();
             guard = later;
-            if guard.bytes.len() == count {
-                return (count > before).then(|| (guard.last - start, count - before));
+            if guard.bytes.len() == now {
+                let last = last_change(&before, &guard, count)?;
+                return Some((last.0 - start, last.1 - count));
             }
         }
     }
@@ -266,6 +272,33 @@ impl Drop for Session {
     }
 }
 
+/// When something last changed outside the line that tells of a search, since there were so many bytes, and how many there
+/// were then.
+fn last_change(before: &Screen, arrived: &Arrived, count: usize) -> Option<(Instant, usize)> {
+    let (rows, columns) = before.size();
+    let mut replay = vt100::Parser::new(rows, columns, 0);
+    replay.process(before.state_formatted().as_bytes());
+    let mut shown = but_the_status(replay.screen());
+    let mut from = count;
+    let mut last = None;
+    for &(time, until) in arrived.parts.iter().filter(|(_, until)| *until > count) {
+        replay.process(&arrived.bytes[from..until]);
+        from = until;
+        let now = but_the_status(replay.screen());
+        if now != shown {
+            (shown, last) = (now, Some((time, until)));
+        }
+    }
+    last
+}
+
+fn but_the_status(screen: &Screen) -> Vec<String> {
+    let (rows, columns) = screen.size();
+    let status = usize::from(rows.get()).saturating_sub(2);
+    let rows = screen.rows_formatted(0, columns.get()).enumerate();
+    rows.filter(|(row, _)| *row != status).map(|(_, row)| row).collect()
+}
+
 fn follow(mut from: Box<dyn Read + Send>, arrived: &Shared) {
     let mut bytes = vec![0; 65536];
     while let Ok(count @ 1..) = from.read(&mut bytes) {
@@ -273,6 +306,8 @@ fn follow(mut from: Box<dyn Read + Send>, arrived: &Shared) {
         let mut state = arrived.0.lock().unwrap();
         state.last = now;
         state.bytes.extend_from_slice(&bytes[..count]);
+        let all = state.bytes.len();
+        state.parts.push((now, all));
         state.screen.process(&bytes[..count]);
         arrived.1.notify_all();
         if state.is_closing {

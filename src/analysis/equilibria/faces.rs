@@ -5,6 +5,7 @@
 //! or patches that vanish only together, are not branched on: their zeros are ordinary roots on a border. The leaves cover
 //! every equilibrium; a leaf whose rows have no meaning with those absent is left out, or forced to be emptier.
 
+use super::Progress;
 use crate::expr::graph::divide::AtZero;
 use crate::expr::graph::{Graph, NodeId};
 
@@ -27,6 +28,8 @@ pub(super) struct Faces {
     reaches_zero: Vec<bool>,
     /// Whether each row vanishes with its species, all others being present.
     vanishes: Vec<bool>,
+    /// The share of the walk that was passed since somebody asked.
+    passed: u64,
 }
 
 #[derive(Clone, Copy, PartialEq, Eq)]
@@ -43,6 +46,8 @@ struct Part {
     rows: Vec<Option<NodeId>>,
     /// The rates divided by their own species, where they vanish with it.
     quotients: Vec<Option<NodeId>>,
+    /// Its share of the whole walk: half of what was to be divided, at each species that is there or not.
+    share: u64,
 }
 
 impl Faces {
@@ -54,24 +59,30 @@ impl Faces {
             decisions: vec![Decision::Open; rows.len()],
             rows: rows.iter().copied().map(Some).collect(),
             quotients: divisions.iter().map(|division| division.quotient).collect(),
+            share: Progress::WHOLE,
         };
         let vanishes = divisions.iter().map(|division| division.zero == zero).collect();
-        Self { stack: vec![root], reaches_zero, vanishes }
+        Self { stack: vec![root], reaches_zero, vanishes, passed: 0 }
     }
 
     /// The next face; `None` when there are no more, or when `stop` said so, and then the walk is not done.
     pub(super) fn next(&mut self, graph: &mut Graph, stop: &dyn Fn() -> bool) -> Option<Face> {
         while let Some(part) = self.stack.pop() {
-            match self.branch(graph, &part) {
-                Some(i) => self.split(graph, part, i, stop)?,
-                None => {
-                    if let Some(face) = leaf(&part) {
-                        return Some(face);
-                    }
-                }
+            if let Some(i) = self.branch(graph, &part) {
+                self.split(graph, part, i, stop)?;
+                continue;
+            }
+            self.passed += part.share;
+            if let Some(face) = leaf(&part) {
+                return Some(face);
             }
         }
         None
+    }
+
+    /// The share of the whole walk, in parts of [`Progress::WHOLE`], that was passed since this was last asked.
+    pub(super) fn passed(&mut self) -> u64 {
+        std::mem::take(&mut self.passed)
     }
 
     /// Whether every face was seen.
@@ -123,7 +134,9 @@ impl Faces {
         // Faces with many present take longest; begun last, one of them would keep all others waiting.
         let present = |part: &Part| part.decisions.iter().filter(|&&decision| decision == Decision::Present).count();
         parts.sort_by_key(|part| std::cmp::Reverse(present(part)));
-        parts.into_iter().map(|part| Self { stack: vec![part], ..self.clone() }).collect()
+        let passed = |first: bool| if first { self.passed } else { 0 };
+        let walks = parts.into_iter().enumerate();
+        walks.map(|(k, part)| Self { stack: vec![part], passed: passed(k == 0), ..self.clone() }).collect()
     }
 
     /// Puts both parts on the stack: species `i` present, where its rate has a value, and absent, where the box allows.
@@ -134,10 +147,20 @@ impl Faces {
             self.stack.push(part);
             return None;
         }
+        let absent = absent.flatten();
+        let [first, second] = match (part.rows[i].is_some(), &absent) {
+            (true, Some(_)) => [part.share - part.share / 2, part.share / 2],
+            (true, None) => [part.share, 0],
+            (false, Some(_)) => [0, part.share],
+            (false, None) => {
+                self.passed += part.share;
+                [0, 0]
+            }
+        };
         if part.rows[i].is_some() {
-            self.stack.push(Part { decisions: with(&part.decisions, i, Decision::Present), ..part });
+            self.stack.push(Part { decisions: with(&part.decisions, i, Decision::Present), share: first, ..part });
         }
-        self.stack.extend(absent.flatten());
+        self.stack.extend(absent.map(|absent| Part { share: second, ..absent }));
         Some(())
     }
 
@@ -265,5 +288,35 @@ mod tests {
         }
         assert!(halting.is_done() && whole.is_done());
         assert_eq!((seen.len(), &seen), (16, &expected));
+    }
+
+    /// Where everybody can be absent by themselves each of the 2^n faces is the same share, however the walk is divided.
+    #[test]
+    fn shares_of_faces_make_a_whole() {
+        for n in [1, 3, 5] {
+            for wanted in [1, 2, 3, 8, 100] {
+                let (mut graph, rows) = crowd(n);
+                let walks = Faces::new(&mut graph, &rows, vec![true; n]).divide(&mut graph, wanted, &|| false);
+                let mut shares = Vec::new();
+                for mut walk in walks {
+                    while walk.next(&mut graph, &|| false).is_some() {
+                        shares.push(walk.passed());
+                    }
+                }
+                assert_eq!(shares, vec![Progress::WHOLE >> n; 1 << n], "{n} species in {wanted} walks");
+            }
+        }
+    }
+
+    /// Whoever cannot be absent halves nothing.
+    #[test]
+    fn a_species_that_is_always_there_divides_no_shares() {
+        let (mut graph, rows) = crowd(3);
+        let mut faces = Faces::new(&mut graph, &rows, vec![true, false, true]);
+        let mut shares = Vec::new();
+        while faces.next(&mut graph, &|| false).is_some() {
+            shares.push(faces.passed());
+        }
+        assert_eq!(shares, vec![Progress::WHOLE / 4; 4]);
     }
 }

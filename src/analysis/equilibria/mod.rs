@@ -115,12 +115,26 @@ pub struct Progress {
     pub faces: usize,
     /// Boxes looked at.
     pub boxes: usize,
+    /// How much of all faces is done, in parts of [`Progress::WHOLE`]: nobody knows how many faces there are before all were
+    /// walked to, but a face counts for half of what its choices leave at each species that is there or not. 0 where that is
+    /// not known either.
+    pub share: u64,
+}
+
+impl Progress {
+    /// The share of all faces.
+    pub const WHOLE: u64 = 1 << 32;
+
+    /// The share in hundredths, rounded downwards.
+    pub fn hundredths(&self) -> u64 {
+        100 * self.share.min(Self::WHOLE) / Self::WHOLE
+    }
 }
 
 impl Budget<'_> {
-    fn tell(&self, faces: usize, boxes: usize) {
+    fn tell(&self, work: Progress) {
         if let Some(observer) = self.observer {
-            observer(Progress { faces, boxes });
+            observer(work);
         }
     }
 }
@@ -240,8 +254,11 @@ impl Whole {
                 let rates = &*rates.get_or_insert_with(|| Tape::new(graph, problem.rows));
                 whole.keep(found, rates, graph, problem, budget.stop);
             }
+            budget.tell(Progress { faces: 1, boxes: 0, share: faces.passed() });
             stopped = (budget.stop)();
         }
+        // Of those at the end that have no equations.
+        budget.tell(Progress { share: faces.passed(), ..Progress::default() });
         if !faces.is_done() {
             // Whatever the walk had still to see may be anywhere in the box.
             let whole_box = problem.sides.iter().map(|side| Interval::new(side[0], side[1])).collect();
@@ -296,12 +313,11 @@ impl Whole {
         let region: Region = face.variables.iter().map(side).collect();
         // The search asks once a box.
         let stop = || {
-            budget.tell(0, 1);
+            budget.tell(Progress { boxes: 1, ..Progress::default() });
             (budget.stop)()
         };
         let limits = Limits { boxes: budget.boxes, stop: &stop };
         let found = Search::run(&tape, problem.values, region.clone(), &limits);
-        budget.tell(1, 0);
         // Where nobody is present there is nothing to search.
         self.boxes += if face.variables.is_empty() { 0 } else { found.boxes };
         self.none_above = self.none_above && above::is_empty(&tape, problem.values, &region);

@@ -67,7 +67,7 @@ pub fn draw(view: &View<'_>, picture: &Picture, extras: &Extras<'_>, style: Styl
     }
     // Last, and only where there is room: a sign that something else cuts in two would read as another.
     match picture {
-        Picture::Plane(portrait) => flow_in_plane(&mut canvas, portrait, style),
+        Picture::Plane(portrait) => flow_in_plane(&mut canvas, portrait, style, extras.most_arrows),
         Picture::Line(profile) => flow_on_line(&mut canvas, profile, style),
     }
     canvas
@@ -87,13 +87,25 @@ fn plane(canvas: &mut Canvas, view: &View<'_>, portrait: &Portrait) {
     }
 }
 
-fn flow_in_plane(canvas: &mut Canvas, portrait: &Portrait, style: Style) {
+fn flow_in_plane(canvas: &mut Canvas, portrait: &Portrait, style: Style, most: Option<usize>) {
     let frame = &portrait.frame;
     let sight = Sight::new(frame);
-    directions(canvas, style, 0..frame.rows, |column, row| {
+    let steps = lattice(frame, style, most);
+    directions(canvas, style, (0..frame.rows, steps), |column, row| {
         let cell = row * frame.columns + column;
         Octant::of(sight.at(column, row, [portrait.motion.x[cell], portrait.motion.y[cell]]))
     });
+}
+
+/// Columns and rows from one direction to the next: as usual, or the least above it for which the lattice has no more places
+/// than are wanted, as square as it was.
+fn lattice(frame: &Frame, style: Style, most: Option<usize>) -> [usize; 2] {
+    let usual = spacing(style);
+    let steps = |across: usize| [across, across / usual];
+    let places = |[across, up]: [usize; 2]| frame.columns.div_ceil(across) * frame.rows.div_ceil(up);
+    let widest = usual * frame.columns.max(frame.rows).max(1);
+    let is_few = |&across: &usize| most.is_none_or(|most| places(steps(across)) <= most);
+    steps((usual..widest).find(is_few).unwrap_or(widest))
 }
 
 fn zero_growth(canvas: &mut Canvas, portrait: &Portrait) {
@@ -112,12 +124,12 @@ fn zero_growth(canvas: &mut Canvas, portrait: &Portrait) {
 fn directions(
     canvas: &mut Canvas,
     style: Style,
-    rows: std::ops::Range<usize>,
+    (rows, [across, up]): (std::ops::Range<usize>, [usize; 2]),
     direction: impl Fn(usize, usize) -> Option<Octant>,
 ) {
     let gap = usize::from(style == Style::Ascii);
-    for row in rows {
-        for column in (0..canvas.columns).step_by(spacing(style)) {
+    for row in rows.step_by(up) {
+        for column in (0..canvas.columns).step_by(across) {
             let Some(octant) = direction(column, row) else { continue };
             let length = flow(octant, style).chars().count();
             let around = column.saturating_sub(gap)..column + length + gap;
@@ -208,7 +220,7 @@ fn line(canvas: &mut Canvas, profile: &Profile) {
 fn flow_on_line(canvas: &mut Canvas, profile: &Profile, style: Style) {
     let frame = &profile.frame;
     let Some([_, level]) = frame.cell([frame.window.x[0], 0.0]) else { return };
-    directions(canvas, style, level..level + 1, |column, _| {
+    directions(canvas, style, (level..level + 1, [spacing(style), 1]), |column, _| {
         profile.rates.get(column).copied().flatten().and_then(|rate| Octant::of([rate, 0.0]))
     });
 }
@@ -286,5 +298,29 @@ fn name(canvas: &mut Canvas, [column, row]: [usize; 2], letters: &[Mark]) {
     let Some(&[start, row]) = places.iter().find(|place| is_quiet(place)).or(places.first()) else { return };
     for (place, &letter) in letters.iter().enumerate() {
         canvas.put([start + place, row], letter);
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::analysis::field::{LINEAR, Window};
+
+    /// With as many arrows as there are places nothing changes; with fewer the lattice is the first that is wide enough.
+    #[test]
+    fn a_larger_sketch_has_a_wider_lattice() {
+        for (columns, rows, style, most, expected) in [
+            (39, 17, Style::Unicode, None, [2, 1]),
+            (39, 17, Style::Unicode, Some(340), [2, 1]),
+            (39, 17, Style::Unicode, Some(339), [3, 1]),
+            (125, 41, Style::Unicode, None, [2, 1]),
+            (125, 41, Style::Unicode, Some(525), [5, 2]),
+            (125, 41, Style::Unicode, Some(500), [6, 3]),
+            (125, 41, Style::Ascii, Some(500), [8, 2]),
+            (2, 1, Style::Unicode, Some(0), [4, 2]),
+        ] {
+            let frame = Frame::scaled(Window { x: [0.0, 1.0], y: [0.0, 1.0] }, LINEAR, columns, rows);
+            assert_eq!(lattice(&frame, style, most), expected, "{columns}x{rows} {style:?} {most:?}");
+        }
     }
 }

@@ -74,6 +74,9 @@ pub struct Extras<'e> {
     pub forwards: Option<&'e Path>,
     /// The path that leads to it.
     pub backwards: Option<&'e Path>,
+    /// The most signs of directions, where not every place on their lattice is to have one: a larger sketch then has a wider
+    /// lattice.
+    pub most_arrows: Option<usize>,
 }
 
 /// The numbers that are drawn.

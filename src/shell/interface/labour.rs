@@ -129,6 +129,7 @@ impl Reporter<'_> {
         let (all, last) = &mut *state;
         all.faces += done.faces;
         all.boxes += done.boxes;
+        all.share += done.share;
         if last.elapsed() >= REPORT {
             *last = Instant::now();
             let _ = self.events.send(Event::Msg(Msg::Advanced(self.id, *all)));

@@ -100,7 +100,7 @@ fn a_step_takes_few_bytes() {
     for (columns, rows, style, median, most) in [
         (80, 24, Style::Unicode, 1500, 4096),
         (80, 24, Style::Ascii, 1500, 4096),
-        (200, 50, Style::Unicode, 6144, 16384),
+        (200, 50, Style::Unicode, 3072, 6144),
     ] {
         let size = Size { columns, rows };
         let mut steps: Vec<usize> = models.iter().flat_map(|app| steps(app.clone(), size, style)).collect();

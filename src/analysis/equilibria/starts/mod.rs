@@ -14,7 +14,7 @@ use std::sync::OnceLock;
 
 use super::border;
 use super::faces::Faces;
-use super::{Budget, Candidate, Equilibria, Equilibrium, Probably, Problem, Unresolved, order};
+use super::{Budget, Candidate, Equilibria, Equilibrium, Probably, Problem, Progress, Unresolved, order};
 use crate::expr::graph::Graph;
 use crate::expr::tape::Tape;
 use crate::num::interval::Interval;
@@ -50,15 +50,15 @@ struct Place {
 pub fn find(graph: &mut Graph, problem: &Problem<'_>, budget: &Budget<'_>) -> Equilibria {
     let reaches_zero: Vec<bool> = problem.sides.iter().map(|side| side[0] <= 0.0).collect();
     let faces = Faces::new(graph, problem.rows, reaches_zero.clone());
-    let mut all = All { graph, faces, problem, budget, found: Bag::default(), seen: BTreeSet::new() };
-    let free = all.faces.free();
+    let free = faces.free();
     let sampled = free.len() > MOST_FREE;
+    let mut all = All { graph, faces, problem, budget, sampled, found: Bag::default(), seen: BTreeSet::new() };
     if sampled {
         all.sample(&reaches_zero);
     } else {
         all.hunt_everywhere(&free);
     }
-    all.finish(sampled)
+    all.finish()
 }
 
 /// The hunt over all faces.
@@ -67,6 +67,8 @@ struct All<'a> {
     faces: Faces,
     problem: &'a Problem<'a>,
     budget: &'a Budget<'a>,
+    /// Whether there are too many faces for all to be hunted.
+    sampled: bool,
     found: Bag,
     /// Faces that were hunted, by who is on them.
     seen: BTreeSet<Vec<usize>>,
@@ -173,7 +175,12 @@ impl All<'_> {
             let on_face = |state: &Vec<f64>| face.variables.iter().map(|&i| state[i]).collect();
             let given: Vec<Vec<f64>> = places[k].given.iter().map(on_face).collect();
             let effort = Effort { starts, stop: &|| (self.budget.stop)() };
-            Some(hunt(graph, &face, self.problem, &given, &effort))
+            let bag = hunt(graph, &face, self.problem, &given, &effort);
+            // All others are hunted twice, and may have been searched before.
+            if self.sampled {
+                self.budget.tell(Progress { faces: 1, ..Progress::default() });
+            }
+            Some(bag)
         });
         for bag in bags.into_iter().flatten() {
             self.found.roots.extend(bag.roots);
@@ -197,9 +204,9 @@ impl All<'_> {
         done.into_iter().map(|done| done.into_inner().flatten()).collect()
     }
 
-    fn finish(self, sampled: bool) -> Equilibria {
+    fn finish(self) -> Equilibria {
         let mut unresolved = self.found.open;
-        unresolved.push(not_complete(self.problem, self.found.starts, self.seen.len(), sampled));
+        unresolved.push(not_complete(self.problem, self.found.starts, self.seen.len(), self.sampled));
         let mut list: Vec<Equilibrium> = self.found.roots.into_iter().map(|root: Candidate| root.equilibrium).collect();
         list.sort_by(order);
         Equilibria {
