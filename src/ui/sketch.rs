@@ -11,8 +11,9 @@ use crate::report::sketch::{Extras, Picture, Size, View, came_from, drawing, end
 
 /// Columns that what is held needs to say anything at all.
 const HELD: u16 = 15;
-/// Signs of directions in a sketch at most. Another plane changes all of them, and each takes six or seven bytes on the line:
-/// with these a step on a large terminal stays below 6 KiB, and a usual one has room for no more anyway.
+/// Signs of directions at most in a sketch whose plane goes with the chosen state, where others are held. Another plane
+/// changes all of them, and each takes six or seven bytes on the line: with these a step on a large terminal stays below
+/// 6 KiB, and a usual one has room for no more anyway. One or two species have one plane, and a sign in every cell.
 const ARROWS: usize = 500;
 /// Said while a sketch is being computed.
 const LATE: &str = "drawing";
@@ -67,7 +68,7 @@ impl<'s> Shown<'s> {
             point: self.study.sketch.point,
             forwards: self.path(false),
             backwards: self.path(true).filter(|_| self.study.sketch.backwards),
-            most_arrows: Some(ARROWS),
+            most_arrows: (self.study.model().species.len() > 2).then_some(ARROWS),
         }
     }
 
