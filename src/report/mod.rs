@@ -2,7 +2,8 @@
 //!
 //! [`check`] says what was understood of a model file, [`table`] what equilibria its scenarios have, [`sketch`] draws their
 //! direction field, [`compare`] puts scenarios side by side, [`course`] shows what happens after a knock, [`interactions`]
-//! who acts on whom, [`rows`] saves these two, [`kinds`] is how each kind of equilibrium is written, [`grid`] holds what is drawn in cells, `layout`
+//! who acts on whom, [`response`] how equilibria
+//! answer to a control, [`rows`] saves these two, [`kinds`] is how each kind of equilibrium is written, [`grid`] holds what is drawn in cells, `layout`
 //! breaks lines.
 
 pub mod check;
@@ -12,6 +13,7 @@ pub mod grid;
 pub mod interactions;
 pub mod kinds;
 mod layout;
+pub mod response;
 pub mod rows;
 pub mod sketch;
 pub mod table;
