@@ -1,1 +1,5 @@
 //! The response to a control, against closed forms and published thresholds.
+
+#![allow(clippy::expect_used, clippy::panic, clippy::unwrap_used, reason = "a test fails by panicking")]
+
+mod plot;

@@ -2,7 +2,7 @@
 //!
 //! [`Responses`] has it all: the scenarios as in a table, and of each what was found [`Along`] the control. `meaning` says
 //! what a threshold means, `summary` the whole in a few sentences, `said` all else that is said in sentences, `sheets` makes
-//! the tables, `paper` the forms for people of them; `csv` and `data` are for spreadsheets and programs. `words` has
+//! the tables, `paper` the forms for people of them, [`plot`] draws; `csv` and `data` are for spreadsheets and programs. `words` has
 //! pieces of sentences. Two controls are in `chart`.
 //!
 //! Branches, thresholds, yields and margins are numerical, and every form says so; only the count of equilibria along the
@@ -26,6 +26,7 @@ mod data;
 mod fields;
 mod meaning;
 mod paper;
+pub mod plot;
 mod said;
 mod segments;
 mod sheets;
@@ -42,7 +43,7 @@ pub use summary::summary;
 use super::table::columns::Glyphs;
 use super::table::{Form, Page, Scene, Solved, Style, Table, pretty};
 use crate::analysis::paths::Destination;
-use crate::analysis::response::{Advice, Margins, Response};
+use crate::analysis::response::{Advice, Band, Margins, Response};
 use crate::model::{Aim, Model, ParameterId, Role};
 
 /// Scenarios along one control.
@@ -69,6 +70,8 @@ pub struct Along {
     pub advice: Advice,
     /// The state that margins are of, by its place in the scenario's list.
     pub focus: Option<usize>,
+    /// The band of the control itself in which it persists and is stable.
+    pub band: Option<Band>,
     /// How near it is to being lost.
     pub margins: Margins,
 }
@@ -122,7 +125,7 @@ pub fn written(responses: &Responses<'_>, form: Form, page: Page) -> String {
         Form::Csv => csv(responses, responses.chosen, page.style),
         Form::Json => pretty(&json(responses), page.style),
         Form::Text | Form::Markdown | Form::Latex => {
-            paper::written(responses.table, &said::parts(responses, glyphs(form, page)), form, page)
+            paper::written(responses.table, &said::parts(responses, form, page), form, page)
         }
     }
 }

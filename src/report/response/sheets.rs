@@ -10,6 +10,7 @@ use super::super::table::human;
 use super::super::table::layout::{Align, Cell, Head, Ink};
 use super::super::table::sheet::Sheet;
 use super::One;
+use super::plot::mark;
 use super::segments::{Segment, segments};
 use super::words::{community, criticality, kind, name, share, taking, taking_unit, told_apart, unit};
 
@@ -44,14 +45,16 @@ pub(super) fn is_shown(threshold: &Threshold) -> bool {
 
 /// The thresholds that concern states that there can be.
 pub(super) fn thresholds(one: &One<'_>) -> Sheet {
-    let shown: Vec<&Threshold> = one.along.response.thresholds.iter().filter(|threshold| is_shown(threshold)).collect();
-    let at = told_apart(&shown.iter().map(|threshold| threshold.at).collect::<Vec<_>>());
+    let all = one.along.response.thresholds.iter().enumerate();
+    let shown: Vec<(usize, &Threshold)> = all.filter(|(_, threshold)| is_shown(threshold)).collect();
+    let at = told_apart(&shown.iter().map(|(_, threshold)| threshold.at).collect::<Vec<_>>());
     let eigenvalues = if one.table.is_map() { String::new() } else { Unit::PerTime.of(one.table, None) };
     let leading = Head { unit: eigenvalues, ..Head::new("leading eigenvalues", Align::Left) };
     let heads = [vec![Head::new("threshold", Align::Left), control_head(one)], state_heads(one)].concat();
     let heads = [heads, vec![leading, Head::new("soft or hard", Align::Left)]].concat();
-    let row = |(threshold, at): (&&Threshold, String)| {
-        let first = vec![Cell::new(kind(threshold.kind)), Cell::new(at)];
+    let row = |((place, threshold), at): (&(usize, &Threshold), String)| {
+        // The sign that marks it in the drawing.
+        let first = vec![Cell::new(format!("{} {}", mark(*place), kind(threshold.kind))), Cell::new(at)];
         let last = vec![Cell::new(spectrum(threshold)), Cell::new(threshold.criticality.map_or("", criticality))];
         [first, state_cells(&threshold.state), last].concat()
     };

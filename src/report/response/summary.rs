@@ -1,6 +1,6 @@
 //! The response of one scenario in a few sentences: how far today's state holds, how it is lost, what it yields.
 
-use crate::analysis::response::{Advice, Band, BestYield, Edge, Margins, OpenAccess, Removal, Threshold};
+use crate::analysis::response::{Advice, Band, BestYield, Edge, OpenAccess, Removal, Threshold};
 
 use super::super::table::words::proof;
 use super::meaning::{Setting, meaning};
@@ -10,8 +10,9 @@ use super::words::{community, kind, name, setting, share, taking, taking_unit, u
 const NEAR: f64 = 0.1;
 
 /// The sentences, in one text.
-pub fn summary(at: &Setting<'_>, advice: &Advice, margins: &Margins, focus: Option<usize>) -> String {
-    let band = margins.bands.iter().find(|band| band.parameter == at.response.control.parameter);
+///
+/// `focus` is the state that it is about, by its place in the list, `band` where that persists and is stable.
+pub fn summary(at: &Setting<'_>, advice: &Advice, focus: Option<usize>, band: Option<&Band>) -> String {
     let mut all = match (focus, band) {
         (Some(place), Some(band)) => held(at, place, band),
         (Some(place), None) => vec![format!("The state at the present value is {}.", state(at, place))],
@@ -115,7 +116,8 @@ fn removed(at: &Setting<'_>, removal: &Removal) -> String {
     match removal.at {
         Some(x) => {
             let here = setting(at.model, at.response.control.parameter, x);
-            format!("No stable state has {species} from {here} on.")
+            let open = if removal.settles_without { "" } else { "; in cycles it may live on" };
+            format!("No stable state has {species} from {here} on{open}.")
         }
         None => format!("At no value in the range are all stable states without {species}."),
     }
