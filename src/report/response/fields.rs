@@ -21,13 +21,10 @@ const fn field(id: &'static str, help: &'static str) -> Field {
 
 /// Every field in its order.
 pub const FIELDS: [Field; 26] = [
-    field(
-        "record",
-        "what the row is: point (of a branch), threshold, best yield, band, or scenario where there is none of these",
-    ),
+    field("record", "what the row is: scenario, threshold, best yield, band, or point of a branch"),
     field("scenario", "the scenario's name"),
     field("of", "the parameter that is varied; of a band the one that it is of"),
-    field("at", "its value; of a band the present one"),
+    field("at", "its value; of a scenario and a band the present one"),
     field("branch", "the branch of a point or a best yield: B1, B2, ..."),
     field("place", "of a point its place along the branch, from 1"),
     field("equilibrium", "the row of the table that a branch passes through at the present value"),

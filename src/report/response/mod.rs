@@ -41,7 +41,7 @@ pub use segments::{Segment, segments};
 pub use summary::summary;
 
 use super::table::columns::Glyphs;
-use super::table::{Form, Page, Scene, Solved, Style, Table, pretty};
+use super::table::{Form, Page, Scene, Solved, Style, Table, human, pretty, scene};
 use crate::analysis::paths::Destination;
 use crate::analysis::response::{Advice, Band, Margins, Response};
 use crate::model::{Aim, Model, ParameterId, Role};
@@ -108,9 +108,18 @@ impl<'r> Responses<'r> {
         self.each().all(|(_, one)| one.is_some_and(|one| is_complete(&one.along.response)))
     }
 
-    /// Whether some scenario has no value over a part of the range.
-    pub fn is_undefined_in_part(&self) -> bool {
-        self.along.iter().flatten().any(|along| !along.response.undefined.is_empty())
+    /// Where scenarios have no value over a part of the range, a sentence each.
+    pub fn undefined(&self) -> Vec<String> {
+        let parameter = words::name(self.table.model, self.control);
+        let of = |(scene, one): (&Scene, Option<One<'r>>)| {
+            let name = scene::name(self.table.model, scene);
+            let parts = one.map_or(&[][..], |one| &one.along.response.undefined).iter();
+            let said = parts.map(|(from, to, why)| {
+                format!("{name}: the model has no value from {parameter} = {} to {}: {why}", human(*from), human(*to))
+            });
+            said.collect::<Vec<_>>()
+        };
+        self.each().flat_map(of).collect()
     }
 }
 

@@ -11,7 +11,7 @@ use super::super::table::words::{INCOMPLETE, UNDECIDED, proof};
 use super::super::table::{Form, Page, human};
 use super::paper::Part;
 use super::plot::{self, Quantity, View};
-use super::words::{gap, kind, listed, setting, share, unit, with_unit};
+use super::words::{gap, kind, listed, name, unit};
 use super::{One, Responses, glyphs, meaning, sheets, summary};
 
 /// Everything, scenario by scenario, and the meaning of words.
@@ -64,12 +64,10 @@ fn scenario<'r>(one: &One<'r>, glyphs: Glyphs, drawings: &[String]) -> Vec<Part<
     let along = one.along;
     let control = &along.response.control;
     let model = one.table.model;
-    let range = format!(
-        "{} to {}, now {}",
-        setting(model, control.parameter, control.from).trim_end_matches(unit(model, control.parameter)).trim_end(),
-        with_unit(control.to, unit(model, control.parameter)),
-        human(control.present)
-    );
+    let [from, to, present] = [control.from, control.to, control.present].map(plain);
+    let unit = unit(model, control.parameter);
+    let to = if unit.is_empty() { to } else { format!("{to} {unit}") };
+    let range = format!("{} from {from} to {to}, now {present}", name(model, control.parameter));
     let mut parts = vec![
         Part::Scenario(one.scene),
         Part::Said(format!("{}; {range}.", scene::changes(one.table, one.scene, one.solved, plain))),
@@ -129,11 +127,11 @@ fn closest(one: &One<'_>, edge: &ClosestEdge, starts: usize) -> String {
         starts => format!("{starts} starts led there"),
     };
     format!(
-        "With all of them moved together the nearest loss found is a {} at {}{outside}: {} of a range away ({}; {led}, and \
-         there may be a nearer one).",
+        "With all of them moved together the nearest loss found is a {} at {}{outside}: a move of {}, each parameter in \
+         widths of its range ({}; {led}, and there may be a nearer one).",
         kind(edge.kind),
         sheets::values(one, &edge.values),
-        share(edge.distance),
+        human(edge.distance),
         proof(false)
     )
 }
@@ -148,7 +146,7 @@ fn complete<'p>(response: &Response, one: &One<'_>) -> Part<'p> {
         1 => "1 value".to_owned(),
         count => format!("{count} values"),
     };
-    let found = format!("searched in full at {stations} of {}", super::words::name(one.table.model, control.parameter));
+    let found = format!("searched in full at {stations} of {}", name(one.table.model, control.parameter));
     if super::is_complete(response) {
         let said = format!("no equilibrium in the search box is missing anywhere in the range; {found}.");
         return Part::Marked(proof(true), Ink::Proved, said);

@@ -102,7 +102,8 @@ pub(super) fn branches(one: &One<'_>, glyphs: Glyphs) -> Sheet {
     heads.extend([Head::new("with", Align::Left), Head::new("type", Align::Left)]);
     heads.extend(ends);
     let rows = one.along.response.branches.iter().enumerate().flat_map(|(place, branch)| {
-        let parts = segments(branch).into_iter().filter(|part| part.feasible);
+        let has_length = |part: &Segment| part.ends[0] != part.ends[1] || branch.points.len() == 1;
+        let parts = segments(branch).into_iter().filter(move |part| part.feasible && has_length(part));
         parts.map(move |part| segment(one, place, branch, &part, glyphs)).collect::<Vec<_>>()
     });
     Sheet { heads, rows: rows.collect() }

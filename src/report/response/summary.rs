@@ -2,6 +2,7 @@
 
 use crate::analysis::response::{Advice, Band, BestYield, Edge, OpenAccess, Removal, Threshold};
 
+use super::super::table::provenance::plain;
 use super::super::table::words::proof;
 use super::meaning::{Setting, meaning};
 use super::words::{community, kind, name, setting, share, taking, taking_unit, unit, with_unit};
@@ -32,7 +33,7 @@ fn is_spoken_of(at: &Setting<'_>, best: &BestYield) -> bool {
 }
 
 fn present(at: &Setting<'_>) -> String {
-    setting(at.model, at.response.control.parameter, at.response.control.present)
+    format!("{} = {}", name(at.model, at.response.control.parameter), plain(at.response.control.present))
 }
 
 /// An equilibrium by its name, and who is there.
@@ -72,7 +73,7 @@ fn lost(at: &Setting<'_>, band: &Band, threshold: &Threshold, amount: f64, end: 
     let distance = if band.present == 0.0 {
         format!("{} {side} the present 0", with_unit(amount, unit(at.model, band.parameter)))
     } else {
-        format!("{} {side} the present {}", share(amount / band.present), with_unit(band.present, ""))
+        format!("{} {side} the present {}", share(amount / band.present), plain(band.present))
     };
     format!("Nearest loss, {distance}: {} ({}).", meaning(at, threshold), kind(threshold.kind))
 }
