@@ -7,7 +7,7 @@ use restpoint::analysis::response::{
     OpenAccess, Point, Response, Station, Taking, Threshold, ThresholdKind,
 };
 use restpoint::model::{Model, ParameterId, SpeciesId};
-use restpoint::report::response::{Along, Chosen, Responses};
+use restpoint::report::response::{Along, Chosen, FIELDS, Responses};
 
 use crate::table_support::{model, with_table_of};
 
@@ -152,7 +152,7 @@ pub(crate) fn with_responses_of<T>(model: &Model, use_it: impl Fn(&Responses<'_>
     let bare =
         Along { response: response(), advice: Advice::default(), focus: None, band: None, margins: Margins::default() };
     let along = [Some(along()), Some(bare), None];
-    let chosen = Chosen::all();
+    let chosen = Chosen::all(&FIELDS);
     with_table_of(model, None, |table| {
         use_it(&Responses { table, control: CONTROL, range: [0.0, 3.0], chosen: &chosen, along: &along })
     })

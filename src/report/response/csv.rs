@@ -66,7 +66,8 @@ fn of_kinds(responses: &Responses<'_>) -> Vec<String> {
     all
 }
 
-fn state_name(table: &super::Table<'_>, species: usize) -> String {
+/// The field of a species' abundance.
+pub(super) fn state_name(table: &super::Table<'_>, species: usize) -> String {
     let Some(species) = table.model.species.get(species) else { return String::new() };
     let unit = species.unit.as_ref().map_or_else(String::new, |unit| format!(" ({})", unit.value));
     format!("state {}{unit}", species.symbol)

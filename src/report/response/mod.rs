@@ -21,6 +21,7 @@
 //!   that it passes through), `ends`; in its points: `stable`, `feasible`, `leading`, `value`, `threshold` (place in the list);
 //!   in a best yield: `of` (`yield`, `value` or `total`), `branch`, `nearest`
 
+pub mod chart;
 mod csv;
 mod data;
 mod fields;
