@@ -1,1 +1,8 @@
 //! The response to a control, against closed forms and published thresholds.
+
+#[path = "../common/mod.rs"]
+mod common;
+
+mod by_hand;
+mod support;
+mod yields;
