@@ -7,8 +7,10 @@
 
 mod advice;
 pub mod bands;
+mod defining;
 pub mod equations;
 mod footing;
+pub mod locate;
 mod open_access;
 mod removal;
 mod stretches;
