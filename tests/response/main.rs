@@ -4,5 +4,7 @@
 mod common;
 
 mod by_hand;
+mod closest;
+mod margins;
 mod support;
 mod yields;

@@ -1,11 +1,10 @@
 //! Best yields, removal and open access against closed forms and published numbers.
 
-use restpoint::analysis::response::{BestYield, ThresholdKind};
+use restpoint::analysis::response::ThresholdKind;
 use serde_json::Value;
 
 use crate::by_hand::{Piece, Study, stable, unstable};
 use crate::common::cases::{self, number};
-use crate::common::text::ModelText;
 
 /// Relative: a maximum is known to rounding in its place, for its slope is what is solved.
 const CLOSE: f64 = 1e-10;

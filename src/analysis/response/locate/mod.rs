@@ -168,6 +168,11 @@ impl Locator {
         self.compiled.len() - 1
     }
 
+    /// Who moves in the system at a place.
+    pub(super) fn moving(&self, place: usize) -> Option<&[usize]> {
+        self.compiled.get(place).map(|compiled| &compiled.moving[..])
+    }
+
     /// The system at a place, and the species that its matrix is over.
     pub(super) fn system(&self, place: usize) -> Option<(&Defining, &[usize])> {
         let compiled = self.compiled.get(place)?;
