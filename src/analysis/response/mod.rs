@@ -5,7 +5,18 @@
 //! that defines them (Kuznetsov 2004, ch. 10), and only the count of equilibria between stations may be proved. `equations`
 //! has a scenario's rows with controls as inputs; start there for anything that moves a parameter.
 
+mod curve;
 pub mod equations;
+mod events;
+mod picture;
+mod piece;
+mod registry;
+mod respond;
+mod switch;
+mod types;
+mod walk;
+
+pub use respond::respond;
 
 use nalgebra::Complex;
 
