@@ -33,6 +33,18 @@ pub(super) fn state_heads(table: &Table<'_>) -> Vec<Head> {
     if all.len() > MOST_SPECIES { Vec::new() } else { all }
 }
 
+/// Shares of the largest abundance on the picture below which one is 0 but for rounding.
+const ROUNDING: f64 = 1e-12;
+
+/// Abundances for people: what is next to nothing beside all that the species has on the picture is 0.
+fn tidy(one: &One<'_>, state: &[f64]) -> Vec<Cell> {
+    let points = || one.along.response.branches.iter().flat_map(|branch| &branch.points);
+    let largest =
+        |i: usize| points().filter_map(|point| point.state.get(i)).fold(0.0, |most: f64, x| most.max(x.abs()));
+    let tidied = state.iter().enumerate().map(|(i, &x)| if x.abs() <= ROUNDING * largest(i) { 0.0 } else { x });
+    if state.len() > MOST_SPECIES { Vec::new() } else { state_cells(&tidied.collect::<Vec<_>>()) }
+}
+
 pub(super) fn state_cells(state: &[f64]) -> Vec<Cell> {
     if state.len() > MOST_SPECIES { Vec::new() } else { state.iter().map(|&x| Cell::new(human(x))).collect() }
 }
@@ -55,7 +67,7 @@ pub(super) fn thresholds(one: &One<'_>) -> Sheet {
         // The sign that marks it in the drawing.
         let first = vec![Cell::new(format!("{} {}", mark(*place), kind(threshold.kind))), Cell::new(at)];
         let last = vec![Cell::new(spectrum(threshold)), Cell::new(threshold.criticality.map_or("", criticality))];
-        [first, state_cells(&threshold.state), last].concat()
+        [first, tidy(one, &threshold.state), last].concat()
     };
     Sheet { heads, rows: shown.iter().zip(at).map(row).collect() }
 }
@@ -162,7 +174,7 @@ fn best_yield(one: &One<'_>, best: &BestYield) -> Vec<Cell> {
         format!("{} at {}, {} {side}", kind(edge.kind), human(edge.at), share(distance))
     });
     let first = vec![Cell::new(what), Cell::new(human(best.amount)), Cell::new(unit), Cell::new(human(best.at))];
-    [first, state_cells(&best.state), vec![Cell::new(attained), Cell::new(nearest)]].concat()
+    [first, tidy(one, &best.state), vec![Cell::new(attained), Cell::new(nearest)]].concat()
 }
 
 /// The interval of each parameter over which the state that advice is about persists and is stable.
@@ -174,15 +186,14 @@ pub(super) fn bands(one: &One<'_>) -> Sheet {
         head("to", ""),
         Head::new("below it", Align::Left),
         Head::new("above it", Align::Left),
-        head("margin", ""),
-        Head::new("share", Align::Left),
+        Head::new("margin", Align::Left),
     ];
     Sheet { heads, rows: one.along.margins.bands.iter().map(|band| self::band(one, band)).collect() }
 }
 
 fn band(one: &One<'_>, band: &Band) -> Vec<Cell> {
     let margin = band.margin();
-    let of_present = margin.filter(|_| band.present != 0.0).map_or_else(String::new, |(x, _)| share(x / band.present));
+    let share = |x: f64| if band.present == 0.0 { String::new() } else { format!(", {}", share(x / band.present)) };
     vec![
         Cell::new(captioned(one, band.parameter)),
         Cell::new(human(band.present)),
@@ -190,8 +201,7 @@ fn band(one: &One<'_>, band: &Band) -> Vec<Cell> {
         Cell::new(human(band.ends[1])),
         edge(band, 0),
         edge(band, 1),
-        Cell::new(margin.map_or_else(String::new, |(x, _)| human(x))),
-        Cell::new(of_present),
+        Cell::new(margin.map_or_else(String::new, |(x, _)| format!("{}{}", human(x), share(x)))),
     ]
 }
 

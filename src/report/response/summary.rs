@@ -1,6 +1,8 @@
 //! The response of one scenario in a few sentences: how far today's state holds, how it is lost, what it yields.
 
-use crate::analysis::response::{Advice, Band, BestYield, Edge, OpenAccess, Removal, Threshold};
+use crate::analysis::response::{
+    Advice, Band, BestYield, Branch, Edge, OpenAccess, Point, Removal, Response, Threshold,
+};
 
 use super::super::table::provenance::plain;
 use super::super::table::words::proof;
@@ -19,10 +21,25 @@ pub fn summary(at: &Setting<'_>, advice: &Advice, focus: Option<usize>, band: Op
         (Some(place), None) => vec![format!("The state at the present value is {}.", state(at, place))],
         (None, _) => vec![format!("No stable state was found at the present {}.", present(at))],
     };
+    if is_flat(at.response) {
+        let name = name(at.model, at.response.control.parameter);
+        return format!("{} No state depends on {name} here. ({})", all.join(" "), proof(false));
+    }
     all.extend(advice.best.iter().filter(|best| is_spoken_of(at, best)).map(|best| best_yield(at, best)));
     all.extend(advice.removals.iter().map(|removal| removed(at, removal)));
     all.extend(advice.open_access.iter().map(|open| open_access(at, open)));
     format!("{} ({})", all.join(" "), proof(false))
+}
+
+/// Whether every branch stays where it is all along the range, and with it all that is taken.
+fn is_flat(response: &Response) -> bool {
+    let stays = |branch: &Branch| {
+        let first = branch.points.first();
+        let is_same =
+            |point: &Point| first.is_some_and(|first| point.state == first.state && point.takings == first.takings);
+        branch.points.iter().all(is_same)
+    };
+    !response.branches.is_empty() && response.thresholds.is_empty() && response.branches.iter().all(stays)
 }
 
 /// Yields that a summary speaks of: the total, or that of the only one taken, and values.
