@@ -3,5 +3,7 @@
 #[path = "../common/mod.rs"]
 mod common;
 
+mod chart;
+mod dbg;
 mod setting;
 mod thresholds;

@@ -121,7 +121,7 @@ impl<'w> Work<'w> {
         }
         let (places, ends) = both_ways(&mut tracer, middle);
         let mut found = match (&corners, &sign) {
-            (Some(corners), Sign::Turn) => corners.on_fold(&self.equations, &face, &tracer, &places),
+            (Some(corners), Sign::Turn) => corners.on_fold(&self.equations, &face, &mut tracer, &places),
             (Some(_), _) => corner::on_hopf(&mut self.describer, &face, &mut tracer, &places),
             _ => Vec::new(),
         };
