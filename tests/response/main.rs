@@ -1,1 +1,7 @@
 //! The response to a control, against closed forms and published thresholds.
+
+#[path = "../common/mod.rs"]
+mod common;
+
+mod setting;
+mod thresholds;

@@ -24,6 +24,7 @@ use super::prepare::Prepared;
 use crate::expr::graph::{Graph, NodeId};
 use crate::model::{Model, SpeciesId};
 use curve::Curve;
+pub(in crate::analysis) use curve::solve;
 pub(in crate::analysis) use face::restricted;
 use face::{Face, Rows};
 pub use identity::{Identities, identify};

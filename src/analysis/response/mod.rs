@@ -5,9 +5,12 @@
 //! that defines them (Kuznetsov 2004, ch. 10), and only the count of equilibria between stations may be proved. `equations`
 //! has a scenario's rows with controls as inputs; start there for anything that moves a parameter.
 
+mod cover;
 mod curve;
+mod defining;
 pub mod equations;
 mod events;
+pub mod locate;
 mod picture;
 mod piece;
 mod registry;
