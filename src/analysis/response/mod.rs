@@ -6,9 +6,21 @@
 //! has a scenario's rows with controls as inputs; start there for anything that moves a parameter.
 
 pub mod chart;
+mod cover;
+mod curve;
 mod defining;
 pub mod equations;
+mod events;
 pub mod locate;
+mod picture;
+mod piece;
+mod registry;
+mod respond;
+mod switch;
+mod types;
+mod walk;
+
+pub use respond::respond;
 
 use nalgebra::Complex;
 
