@@ -23,6 +23,9 @@ const GRID: [usize; 2] = [GIVEN[0] * FINER, GIVEN[1] * FINER];
 /// One cell of so many each way is searched, to check that a region is of one kind.
 const CHECKED: usize = 6 * FINER;
 
+/// Points of doubt that are given at once.
+const MOST_DOUBTFUL: usize = 4;
+
 /// Components of no more cells that touch another of the same kind are where that grows narrower than a cell.
 const SLIVER: usize = 12;
 
@@ -33,44 +36,13 @@ pub(super) struct Found {
     pub(super) grid: [usize; 2],
 }
 
-/// Searches at cells.
-struct Searcher<'s> {
+/// Searches at cells; what was found there stays known.
+pub(super) struct Searcher<'s> {
     subject: Subject<'s>,
     lineariser: Lineariser,
     controls: [Control; 2],
     values: Vec<f64>,
     known: Vec<Option<Region>>,
-}
-
-/// The regions of a chart with these curves.
-pub(super) fn find(
-    subject: &Subject<'_>,
-    controls: &[Control; 2],
-    curves: &[ChartCurve],
-    budget: &Budget<'_>,
-) -> Found {
-    let cells = Cells::new(controls, curves);
-    let count = GRID[0] * GRID[1];
-    let mut searcher = Searcher::new(subject, *controls);
-    let mut owner = cells.components(&|_, _| true);
-    let mixed: Vec<usize> = members(&owner)
-        .iter()
-        .enumerate()
-        .filter(|(_, members)| !searcher.is_of_one_kind(&owner, members, budget))
-        .map(|(component, _)| component)
-        .collect();
-    if !mixed.is_empty() {
-        let mut kinds = vec![None; count];
-        for cell in (0..count).filter(|&cell| mixed.contains(&owner[cell])) {
-            // Cells around the middle of one that is given take after it, if no curve runs between.
-            let middle = given_middle(cell);
-            let looked_at = if owner[middle] == owner[cell] { middle } else { cell };
-            kinds[cell] = searcher.at(looked_at, budget).map(likeness);
-        }
-        owner = cells.components(&|a, b| kinds[a] == kinds[b]);
-    }
-    searcher.join_slivers(&mut owner, budget);
-    searcher.named(&owner, budget)
 }
 
 /// The middle one of those cells that are one of the grid that is given.
@@ -88,7 +60,7 @@ fn members(owner: &[usize]) -> Vec<Vec<usize>> {
 }
 
 impl<'s> Searcher<'s> {
-    fn new(subject: &Subject<'s>, controls: [Control; 2]) -> Self {
+    pub(super) fn new(subject: &Subject<'s>, controls: [Control; 2]) -> Self {
         let parameters = controls.map(|control| control.parameter);
         Self {
             lineariser: Lineariser::open(subject, &parameters),
@@ -97,6 +69,36 @@ impl<'s> Searcher<'s> {
             controls,
             known: vec![None; GRID[0] * GRID[1]],
         }
+    }
+
+    /// Points at which something else is found than in the depth of the region that the curves make them part of.
+    pub(super) fn doubtful(&mut self, curves: &[ChartCurve], budget: &Budget<'_>) -> Vec<[f64; 2]> {
+        let owner = Cells::new(&self.controls, curves).components(&|_, _| true);
+        let members = members(&owner);
+        let others = members.iter().filter_map(|members| self.other_kind(&owner, members, budget));
+        let others: Vec<usize> = others.take(MOST_DOUBTFUL).collect();
+        others.into_iter().map(|cell| middle(&self.controls, cell)).collect()
+    }
+
+    /// The regions of a chart with these curves.
+    pub(super) fn regions(&mut self, curves: &[ChartCurve], budget: &Budget<'_>) -> Found {
+        let cells = Cells::new(&self.controls, curves);
+        let mut owner = cells.components(&|_, _| true);
+        let members = members(&owner);
+        let is_mixed = |component: &usize| self.other_kind(&owner, &members[*component], budget).is_some();
+        let mixed: Vec<usize> = (0..members.len()).filter(is_mixed).collect();
+        if !mixed.is_empty() {
+            let mut kinds = vec![None; owner.len()];
+            for cell in (0..owner.len()).filter(|&cell| mixed.contains(&owner[cell])) {
+                // Cells around the middle of one that is given take after it, if no curve runs between.
+                let middle = given_middle(cell);
+                let looked_at = if owner[middle] == owner[cell] { middle } else { cell };
+                kinds[cell] = self.at(looked_at, budget).map(likeness);
+            }
+            owner = cells.components(&|a, b| kinds[a] == kinds[b]);
+        }
+        self.join_slivers(&mut owner, budget);
+        self.named(&owner, budget)
     }
 
     /// What is at the middle of a cell; `None` where the search was stopped.
@@ -125,11 +127,11 @@ impl<'s> Searcher<'s> {
         Some(Region { inside, equilibria: states.collect(), complete: found.complete })
     }
 
-    /// Whether the cells of a component that are looked at have the same number and types of equilibria as its deepest.
-    fn is_of_one_kind(&mut self, owner: &[usize], members: &[usize], budget: &Budget<'_>) -> bool {
-        let Some(first) = self.at(deepest(owner, members), budget).map(likeness) else { return true };
+    /// The first cell that is looked at in a component where number or types of equilibria are not those in its depth.
+    fn other_kind(&mut self, owner: &[usize], members: &[usize], budget: &Budget<'_>) -> Option<usize> {
+        let first = self.at(deepest(owner, members), budget).map(likeness)?;
         let checked: Vec<usize> = members.iter().copied().filter(|&cell| is_checked(cell)).collect();
-        checked.into_iter().all(|cell| self.at(cell, budget).map(likeness).is_none_or(|found| found == first))
+        checked.into_iter().find(|&cell| self.at(cell, budget).map(likeness).is_some_and(|found| found != first))
     }
 
     /// Gives small components to a neighbour of the same kind, across a curve that leaves less than a cell between.
