@@ -4,11 +4,12 @@
 
 use restpoint::analysis::equilibria::{Budget, OneByOne};
 use restpoint::analysis::linearise::Kind;
-use restpoint::analysis::response::chart::{Seed, chart_from};
+use restpoint::analysis::response::chart::{self, Seed, chart_from};
 use restpoint::analysis::response::locate::Sign;
 use restpoint::analysis::response::{Chart, ChartPoint, ThresholdKind};
 
 use crate::common::cases::{self, number};
+use crate::common::solve::{Method, solve};
 use crate::common::text::ModelText;
 use crate::setting::{control, subject};
 
@@ -123,6 +124,31 @@ fn ricker_flips_along_a_curve() {
     let seeds = [(Sign::Flip(None), &[90.0][..], [start, 0.2])];
     let found = chart(&text, [("r", 1.0, 3.0), ("u", 0.0, 0.6)], &seeds);
     on_curve(&found, ThresholdKind::PeriodDoubling, |_, [_, u]| [2.0 - (1.0 - u).ln(), u]);
+}
+
+/// The same charts from nothing but the model, thresholds being met along lines.
+#[test]
+fn curves_are_met_by_lines() {
+    let whole = |id: &str, controls: [Ranged<'_>; 2]| {
+        let mut read = cases::named(id).text().read();
+        let list = solve(&mut read, 0, Method::Chosen).list;
+        let subject = subject(&mut read);
+        let controls = controls.map(|(name, from, to)| control(&subject, name, from, to));
+        let budget = Budget { boxes: 50_000, stop: &|| false, workers: &OneByOne, observer: None };
+        chart::chart(&subject, controls, &list, &budget)
+    };
+    let found = whole("B19_bazykin_three_interior", [("al", 0.2, 1.0), ("de", 0.0001, 0.4)]);
+    let count = |kind| points(&found, kind).len();
+    let counts = [ThresholdKind::Cusp, ThresholdKind::BogdanovTakens, ThresholdKind::GeneralisedHopf].map(count);
+    assert_eq!(counts, [1, 2, 1], "{:?}", found.points);
+    let found = whole("B24_xiao_ruan_bt", [("h", 0.02, 0.1), ("r", 0.2, 0.6)]);
+    has_point(&found, ThresholdKind::BogdanovTakens, [0.0625, 0.375]);
+    // Clark (1990): two stocks that one fleet fishes; each is lost at E = r/q, whatever the other's r is.
+    let found = whole("B27_clark_two_independent", [("E", 100.0, 1000.0), ("r1", 0.02, 0.09)]);
+    on_curve(&found, ThresholdKind::Transcritical, |state, [effort, r1]| {
+        if (effort - 800.0).abs() < 1e-6 { [800.0, r1] } else { [1e4 * r1, state[0] * 0.0 + effort * 1e-4] }
+    });
+    assert_eq!(found.regions.len(), 4, "{:?}", found.regions);
 }
 
 /// Published points of two parameters, from a fold near each: cusp and double eigenvalues 0.

@@ -4,6 +4,6 @@
 mod common;
 
 mod chart;
-mod dbg;
+mod located;
 mod setting;
 mod thresholds;

@@ -78,8 +78,8 @@ impl Corners {
                 let mut nearest = |number: &dyn Fn(&Signs) -> f64| {
                     let mut at =
                         |at: &Place| signs(&tape, values, face, &sizes, at, Some(then)).map(|signs| number(&signs));
-                    let turns = number(then) * number(now) < 0.0;
-                    turns.then(|| tracer.between(last, length, &mut at).1).flatten()
+                    let changes = changes(number(then), number(now));
+                    changes.then(|| tracer.between(last, length, &mut at).1).flatten()
                 };
                 let (bend, double) = (nearest(&|signs| signs.bend), nearest(&|signs| signs.double));
                 found.extend(bend.and_then(|at| self.cusp_at(equations, tracer, &at, [last, place])));
@@ -154,7 +154,7 @@ pub(super) fn on_hopf(
     let mut found = Vec::new();
     for k in 1..places.len() {
         let (Some(a), Some(b)) = (values[k - 1], values[k]) else { continue };
-        if a * b >= 0.0 {
+        if !changes(a, b) {
             continue;
         }
         let length = tracer.length(&places[k - 1], &places[k]);
@@ -197,6 +197,11 @@ fn signs(
         right,
         left,
     })
+}
+
+/// Whether a sign changes; 0 counts as above, so that a point on the spot is met once.
+fn changes(a: f64, b: f64) -> bool {
+    (a < 0.0) != (b < 0.0)
 }
 
 /// v with A v = the right vector, at right angles to it; by a bordered system.
