@@ -20,6 +20,7 @@ mod switch;
 mod types;
 mod walk;
 
+pub use chart::chart;
 pub use respond::respond;
 
 use nalgebra::Complex;

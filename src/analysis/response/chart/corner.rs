@@ -78,8 +78,12 @@ impl Corners {
                 let mut nearest = |number: &dyn Fn(&Signs) -> f64| {
                     let mut at =
                         |at: &Place| signs(&tape, values, face, &sizes, at, Some(then)).map(|signs| number(&signs));
-                    let changes = changes(number(then), number(now));
-                    changes.then(|| tracer.between(last, length, &mut at).1).flatten()
+                    if !changes(number(then), number(now)) {
+                        return None;
+                    }
+                    // A number that is 0 at an end may have no sign to change by when it is worked out again.
+                    let end = if number(then).abs() < number(now).abs() { *last } else { place };
+                    Some(tracer.between(last, length, &mut at).1.unwrap_or_else(|| end.clone()))
                 };
                 let (bend, double) = (nearest(&|signs| signs.bend), nearest(&|signs| signs.double));
                 found.extend(bend.and_then(|at| self.cusp_at(equations, tracer, &at, [last, place])));
