@@ -6,7 +6,9 @@
 mod common;
 
 mod by_hand;
+mod chart;
 mod closest;
+mod located;
 mod margins;
 mod plot;
 mod setting;

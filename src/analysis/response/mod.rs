@@ -9,6 +9,7 @@ mod advice;
 mod bands;
 pub mod chart;
 mod closest;
+mod cover;
 mod curve;
 mod defining;
 pub mod equations;
@@ -33,6 +34,7 @@ mod yields;
 
 pub use advice::advise;
 pub use bands::band;
+pub use chart::chart;
 pub use margins::margins;
 pub use respond::respond;
 

@@ -88,7 +88,8 @@ pub struct Located {
 
 /// Which system defines what, and on which face.
 struct Compiled {
-    moving: Vec<usize>,
+    /// With its rows, for several smooth pieces of a branch may have the same species.
+    face: Face,
     sign: Sign,
     /// Which control moves, where that matters.
     control: usize,
@@ -153,9 +154,8 @@ impl Locator {
     /// The compiled system of a face and a sign; that of a crossing is one for each control.
     pub(super) fn place(&mut self, equations: &mut Equations, face: &Face, sign: &Sign, control: usize) -> usize {
         let control = if *sign == Sign::Crossing { control } else { 0 };
-        let is_same = |compiled: &Compiled| {
-            compiled.moving == face.moving && compiled.sign == *sign && compiled.control == control
-        };
+        let is_same =
+            |compiled: &Compiled| compiled.sign == *sign && compiled.control == control && compiled.face == *face;
         if let Some(place) = self.compiled.iter().position(is_same) {
             return place;
         }
@@ -164,7 +164,7 @@ impl Locator {
             _ => face.moving.clone(),
         };
         let system = compiled(equations, face, sign, control);
-        self.compiled.push(Compiled { moving: face.moving.clone(), sign: sign.clone(), control, system, over });
+        self.compiled.push(Compiled { face: face.clone(), sign: sign.clone(), control, system, over });
         self.compiled.len() - 1
     }
 
@@ -236,7 +236,7 @@ fn compiled(equations: &mut Equations, face: &Face, sign: &Sign, control: usize)
         }
         Sign::Kink(node) => {
             let [a, b, piece] = sides_of(equations, *node)?;
-            let rows = equations.graph.replaced(&face.rows, *node, piece);
+            let rows = equations.graph.replaced(&face.rows, &[(*node, piece)]);
             let smooth = Face { rows, ..face.clone() };
             let difference = equations.graph.sub(a, b);
             let difference = at_face(equations, &[difference], face)?[0];
