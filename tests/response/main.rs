@@ -5,6 +5,9 @@ mod common;
 
 mod by_hand;
 mod closest;
+mod front;
 mod margins;
+mod setting;
 mod support;
+mod thresholds;
 mod yields;

@@ -11,6 +11,7 @@ mod closest;
 mod defining;
 pub mod equations;
 mod footing;
+mod front;
 pub mod locate;
 mod margins;
 mod open_access;
@@ -18,11 +19,13 @@ mod ray;
 mod removal;
 mod stretches;
 mod surface;
+mod terrain;
 mod watch;
 mod yields;
 
 pub use advice::advise;
 pub use bands::band;
+pub use front::front;
 pub use margins::margins;
 
 use nalgebra::Complex;
