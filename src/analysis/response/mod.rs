@@ -8,18 +8,28 @@
 mod advice;
 mod bands;
 mod closest;
+mod cover;
+mod curve;
 mod defining;
 pub mod equations;
+mod events;
 mod footing;
 mod front;
 pub mod locate;
 mod margins;
 mod open_access;
+mod picture;
+mod piece;
 mod ray;
+mod registry;
 mod removal;
+mod respond;
 mod stretches;
 mod surface;
+mod switch;
 mod terrain;
+mod types;
+mod walk;
 mod watch;
 mod yields;
 
@@ -27,6 +37,7 @@ pub use advice::advise;
 pub use bands::band;
 pub use front::front;
 pub use margins::margins;
+pub use respond::respond;
 
 use nalgebra::Complex;
 
