@@ -97,6 +97,11 @@ impl Describer {
         Some(if attracts { Criticality::Soft } else { Criticality::Hard })
     }
 
+    /// How many species there are.
+    pub(in crate::analysis::response) fn species(&self) -> usize {
+        self.symbols.len()
+    }
+
     /// First Lyapunov coefficient at a state, with the sum of the sizes of its terms.
     pub(in crate::analysis::response) fn lyapunov(&mut self, state: &[f64], controls: &[f64]) -> Option<(f64, f64)> {
         self.set(controls);
