@@ -8,6 +8,7 @@ mod common;
 mod by_hand;
 mod chart;
 mod closest;
+mod front;
 mod located;
 mod margins;
 mod plot;

@@ -130,7 +130,7 @@ fn first_hit(setting: &mut Setting<'_>, direction: &[f64], far: f64) -> Option<H
     };
     let limit = setting.movers.iter().zip(direction).map(bound).fold(far, f64::min);
     match setting.follow(direction, limit.max(0.0)) {
-        Course::Lost { t, located } if is_loss(located.kind, &located, setting) && t > 0.0 => {
+        Course::Lost { t, located, .. } if is_loss(located.kind, &located, setting) && t > 0.0 => {
             Some(Hit { t, located: *located })
         }
         _ => None,

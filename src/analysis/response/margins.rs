@@ -6,13 +6,15 @@
 use super::closest;
 use super::equations::Equations;
 use super::footing::{Footing, Line, Standing};
-use super::locate::{Located, Locator};
+use super::locate::describe::Describer;
+use super::locate::{Event, Located, Locator, Sign};
 use super::ray::{Course, Ray, scales};
 use super::watch::Watch;
 use super::{Arm, Band, Edge, Margins, Threshold, ThresholdKind};
 use crate::analysis::equilibria::{Budget, Equilibrium};
 use crate::analysis::subject::Subject;
-use crate::model::{ParameterId, SpeciesId};
+use crate::expr::graph::Operation;
+use crate::model::{Parameter, ParameterId};
 
 /// A parameter that moves.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -36,6 +38,7 @@ impl Mover {
 pub(super) struct Setting<'s> {
     pub(super) equations: Equations,
     pub(super) locator: Locator,
+    pub(super) describer: Describer,
     pub(super) footing: Footing,
     pub(super) watch: Watch,
     pub(super) movers: Vec<Mover>,
@@ -101,17 +104,24 @@ fn setting<'s>(
     let x: Vec<f64> = footing.face.moving.iter().map(|&i| start.state[i]).collect();
     let inputs: Vec<f64> = x.iter().copied().chain(movers.iter().map(|mover| mover.present)).collect();
     let seen = watch.at(&inputs)?;
-    let setting = Setting { equations, locator: Locator::new(), footing, watch, movers, x, stop };
+    let describer = Describer::new(subject, &controls);
+    let setting = Setting { equations, locator: Locator::new(), describer, footing, watch, movers, x, stop };
     setting.watch.is_stable(&seen).then_some(setting)
 }
 
 /// Parameters with a range that are used by the equations, in the file's order.
 fn movers(subject: &Subject<'_>) -> Vec<Mover> {
-    let mover = |(i, parameter): (usize, &crate::model::Parameter)| {
+    let mut used = vec![false; subject.model.parameters.len()];
+    for node in subject.graph.reachable(&subject.plan.rows) {
+        if let Operation::Parameter(i) = subject.graph.operation(node) {
+            used[i] = true;
+        }
+    }
+    let mover = |(i, parameter): (usize, &Parameter)| {
         let range = parameter.range.as_ref()?.value;
         let limits = [parameter.min.unwrap_or(f64::NEG_INFINITY), parameter.max.unwrap_or(f64::INFINITY)];
         let present = subject.plan.values[i];
-        (range[0] < range[1]).then_some(Mover { parameter: ParameterId(i), present, range, limits })
+        (used[i] && range[0] < range[1]).then_some(Mover { parameter: ParameterId(i), present, range, limits })
     };
     subject.model.parameters.iter().enumerate().filter_map(mover).collect()
 }
@@ -141,8 +151,8 @@ fn band(setting: &mut Setting<'_>, which: usize, place: usize) -> Band {
                 band.ends[side] = at(t);
                 band.edges[side] = Edge::NotFollowed;
             }
-            Course::Lost { located, .. } => {
-                let threshold = threshold(setting, &located, place, side == 0);
+            Course::Lost { located, around, .. } => {
+                let threshold = threshold(setting, &located, around, side == 0);
                 band.ends[side] = threshold.at;
                 band.edges[side] = Edge::Threshold(side);
                 band.thresholds[side] = Some(threshold);
@@ -153,24 +163,16 @@ fn band(setting: &mut Setting<'_>, which: usize, place: usize) -> Band {
 }
 
 /// What was located as a threshold of one parameter; the state that is lost there lies above it or below.
-fn threshold(setting: &Setting<'_>, located: &Located, place: usize, above: bool) -> Threshold {
-    let controls = &located.point[located.point.len() - setting.movers.len()..];
+fn threshold(setting: &mut Setting<'_>, located: &Located, around: [Vec<f64>; 2], above: bool) -> Threshold {
+    let [before, after] = around;
+    let (before, after) = if above { (&after, &before) } else { (&before, &after) };
     let face = &setting.footing.face;
-    let inputs: Vec<f64> = face.moving.iter().map(|&i| located.state[i]).chain(controls.iter().copied()).collect();
-    let seen = setting.watch.at(&inputs);
+    // A described kink needs the points in rising order of the parameter; nothing else is asked of what is looked for.
+    let event = Event { face, sign: Sign::Turn, before, after };
+    let described = setting.describer.threshold(&mut setting.equations, &event, located);
     let present = (0..located.state.len()).map(|i| face.moving.contains(&i)).collect();
-    Threshold {
-        kind: located.kind,
-        at: controls[place],
-        state: located.state.clone(),
-        eigenvalues: seen.map(|seen| setting.watch.eigenvalues(&seen)).unwrap_or_default(),
-        other_side: None,
-        criticality: None,
-        species: located.species.map(SpeciesId),
-        arms: vec![Arm { branch: None, above, kind: None, stable: Some(true), feasible: true, present }],
-        kink: None,
-        error: located.error,
-    }
+    let arm = Arm { branch: None, above, kind: None, stable: Some(true), feasible: true, present };
+    Threshold { arms: vec![arm], ..described }
 }
 
 /// Whether a threshold takes the state away for good, rather than out of the picture.

@@ -49,6 +49,8 @@ pub(super) enum Course {
         t: f64,
         /// What it was.
         located: Box<Located>,
+        /// Abundances of those who move and every control shortly before, and after.
+        around: [Vec<f64>; 2],
     },
     /// It could not be followed beyond t, or what happened there could not be located.
     NotFollowed {
@@ -175,7 +177,8 @@ impl<'f> Ray<'_, 'f> {
         let least = found.iter().fold(f64::INFINITY, |least, (t, _)| least.min(*t));
         let room = SAME_PLACE * self.standing.scale[here.spot.len() - 1];
         let (t, located) = found.into_iter().find(|(t, _)| *t <= least + room)?;
-        Some(Course::Lost { t, located: Box::new(located) })
+        let around = [here, next].map(|point| self.standing.line.inputs(&point.spot));
+        Some(Course::Lost { t, located: Box::new(located), around })
     }
 
     fn located(&mut self, sign: Sign, here: &Point, next: &Point) -> Option<(f64, Located)> {

@@ -149,17 +149,6 @@ impl Watch {
             .map(|(&node, _)| Sign::Kink(node))
             .collect()
     }
-
-    /// Every eigenvalue in the contract's order.
-    pub(super) fn eigenvalues(&self, seen: &Seen) -> Vec<Complex<f64>> {
-        let mut all: Vec<Complex<f64>> = seen.groups.iter().flat_map(|(_, values)| values).copied().collect();
-        let size = |z: &Complex<f64>| if self.is_map { z.norm() } else { z.re };
-        all.sort_by(|a, b| {
-            let then = b.re.total_cmp(&a.re).then(b.im.total_cmp(&a.im));
-            size(b).total_cmp(&size(a)).then(then)
-        });
-        all
-    }
 }
 
 /// Every node of a face's rows that has a kink, and the difference of what it compares.
