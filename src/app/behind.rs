@@ -26,6 +26,7 @@ pub fn behind(app: &App, form: Form) -> Result<String, String> {
         (Screen::Chooser, _) | (_, None) => Err("no model is open".to_owned()),
         (Screen::SideBySide, Some(study)) => side_by_side(app, study, form),
         (Screen::Interactions | Screen::Knock, Some(study)) => of_selected(app, study, form),
+        (Screen::Response, Some(_)) => Err("the command response makes its tables".to_owned()),
         // What these screens say of equilibria, the table says in more columns.
         (Screen::Equilibria | Screen::Values, Some(study)) => table(app, study, form),
     }
@@ -44,6 +45,7 @@ pub fn name(app: &App) -> String {
         Screen::Interactions => "interactions",
         Screen::Knock => "knock",
         Screen::Values => "values",
+        Screen::Response => "response",
     };
     format!("{stem}-{screen}")
 }

@@ -2,7 +2,7 @@
 //!
 //! [`View`] says what is looked at, [`drawing`] lays it between its axes as a grid, [`signs`] says what its signs mean, as far
 //! as they occur, [`text()`] is both for a page, [`mark`] is the sign of a threshold, which whoever lists thresholds repeats, [`cut`] what a vertical rule
-//! meets. The stroke of a branch tells its type; it comes from the table of kinds. A part of a branch that is not feasible is
+//! meets, [`stays`] how far that stays what it is. The stroke of a branch tells its type; it comes from the table of kinds. A part of a branch that is not feasible is
 //! not drawn. To draw something more: a `Mark` in `canvas`, its meaning in `signs`.
 
 mod canvas;
@@ -11,7 +11,7 @@ mod drawing;
 mod signs;
 mod text;
 
-pub use cut::{Met, cut};
+pub use cut::{Met, cut, stays};
 pub use drawing::{SMALLEST, drawing};
 pub use signs::{mark, not_marked, signs};
 pub use text::text;

@@ -1,0 +1,217 @@
+//! The response to a control: which control, where the rule stands, which state at the rule is picked, what is drawn upwards.
+//!
+//! [`Responding`] is what the user chose; [`control`] and [`rule`] are what that comes to in the slot that is looked at.
+//! [`respond`] and [`at_rule`] are the work to be done, [`known`] and [`there`] what came of it, [`parts`] says where things
+//! stand. `states` has the states at the rule, `words` what is said.
+
+mod states;
+mod words;
+
+pub use states::{State, chosen_branch, picked, states, there};
+pub use words::{row, sentence};
+
+use std::sync::Arc;
+
+use super::geometry::{Area, Size, frame};
+use super::study::Slot;
+use super::task::{Answer, Found, Painting, Task};
+use super::trial::step;
+use super::wants::axes;
+use super::{App, Study};
+use crate::analysis::field::{LINEAR, Window, around};
+use crate::analysis::response::{Control, Response};
+use crate::model::{Parameter, ParameterId};
+use crate::report::response::plot::{Quantity, View, quantities};
+use crate::report::sketch::{self, Plot};
+
+/// What the user chose.
+#[derive(Clone, Debug, Default, PartialEq)]
+pub struct Responding {
+    /// The control, among those that can be varied.
+    pub control: usize,
+    /// Where the rule was moved to: of each slot and control one value.
+    pub rules: Vec<((usize, ParameterId), f64)>,
+    /// What is drawn upwards, among all that can be.
+    pub quantity: usize,
+    /// The state at the rule that is picked.
+    pub pick: Pick,
+    /// The first state that is listed.
+    pub from: usize,
+    /// The first threshold that is listed.
+    pub thresholds_from: usize,
+}
+
+/// Which state at the rule is picked.
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq)]
+pub enum Pick {
+    /// The equilibrium that is selected on the other screens.
+    #[default]
+    Selected,
+    /// The one on this part of a branch, wherever the rule is.
+    Branch(usize, usize),
+    /// The one at this place of the list.
+    Place(usize),
+}
+
+/// Parameters that can be varied: those with a range, first those that management can set.
+pub fn controls(study: &Study) -> Vec<ParameterId> {
+    let has_range = |one: &Parameter| one.range.as_ref().is_some_and(|range| range.value[0] < range.value[1]);
+    let parameters = &study.model().parameters;
+    study.parameters().into_iter().filter(|id| parameters.get(id.0).is_some_and(has_range)).collect()
+}
+
+/// The control that is varied.
+pub fn parameter(study: &Study) -> Option<(ParameterId, &Parameter)> {
+    let id = *controls(study).get(study.responding.control)?;
+    Some((id, study.model().parameters.get(id.0)?))
+}
+
+/// The control with its range and its present value in the slot that is looked at.
+pub fn control(study: &Study) -> Option<Control> {
+    let (id, one) = parameter(study)?;
+    let [from, to] = one.range.as_ref()?.value;
+    let present = *study.solved()?.values.get(id.0)?;
+    Some(Control { parameter: id, from, to, present })
+}
+
+/// Where the rule stands: where it was moved to, else at the present value, or at the end of the range next to that.
+pub fn rule(study: &Study) -> Option<f64> {
+    let control = control(study)?;
+    let key = (study.current, control.parameter);
+    let moved = study.responding.rules.iter().find(|(other, _)| *other == key).map(|(_, at)| *at);
+    Some(moved.unwrap_or(control.present).max(control.from).min(control.to))
+}
+
+/// By how much the rule moves.
+pub fn fine_step(study: &Study) -> Option<f64> {
+    parameter(study).map(|(_, one)| step(one))
+}
+
+/// Following every branch; `None` where nothing is found yet, or nothing can be varied.
+pub fn respond(app: &App, study: &Study) -> Option<Task> {
+    let (world, scene) = study.slot().and_then(|slot| slot.found.clone())?;
+    Some(Task::Respond { world, scene: Found(scene), control: control(study)?, budget: app.budget })
+}
+
+/// Seconds that the search at the rule may take; at a threshold there is no end to it.
+const BUDGET: f64 = 2.0;
+
+/// Searching at the rule; `None` where that is the present value, which is searched already.
+pub fn at_rule(app: &App, study: &Study) -> Option<Task> {
+    let (world, scene) = study.slot().and_then(|slot| slot.found.clone())?;
+    let (control, at) = (control(study)?, rule(study)?);
+    let task = Task::Cut {
+        world,
+        scenario: scene.scenario,
+        parameter: control.parameter,
+        at,
+        budget: app.budget.min(BUDGET),
+    };
+    (at.to_bits() != control.present.to_bits()).then_some(task)
+}
+
+/// The response as far as it is known, and whether that is all that is to come.
+pub fn known<'a>(app: &'a App, study: &Study) -> Option<(&'a Arc<Response>, bool)> {
+    let task = respond(app, study)?;
+    let of = |answer: Option<&'a Answer>| match answer? {
+        Answer::Responded(response) => response.as_ref(),
+        _ => None,
+    };
+    let whole = of(app.desk.known(&task)).map(|response| (response, true));
+    whole.or_else(|| of(app.desk.partly(&task)).map(|response| (response, false)))
+}
+
+/// What is drawn upwards.
+pub fn quantity(study: &Study, response: &Response) -> Option<Quantity> {
+    let all = quantities(study.model(), response);
+    all.get(study.responding.quantity).or(all.first()).copied()
+}
+
+/// What is drawn.
+pub fn view<'v>(app: &App, study: &'v Study, response: &'v Response) -> Option<View<'v>> {
+    let quantity = quantity(study, response)?;
+    let (rule, chosen) = (rule(study), chosen_branch(app, study));
+    Some(View { model: study.model(), response, quantity, rule, chosen })
+}
+
+/// The sketch of what was found at the rule; its window holds every state of the response, so that states move in it.
+pub fn painting(app: &App, study: &Study, area: Area) -> Option<Painting> {
+    let (world, scene) = there(app, study)?;
+    let found = Found(scene);
+    let solved = found.solved()?;
+    let axes = axes(study);
+    let chosen = picked(app, study).and_then(|state| state.found).unwrap_or(0);
+    let slice = super::wants::slice(study, solved, axes, chosen);
+    let window = known(app, study).and_then(|(response, _)| window(study, response, axes));
+    let window = window.unwrap_or_else(|| super::wants::fitting(study, axes));
+    let plot = Plot::of(sketch::Size { columns: area.columns.into(), rows: area.rows.into() });
+    Some(Painting { world, slice, window, scales: LINEAR, plot, scene: found })
+}
+
+fn window(study: &Study, response: &Response, axes: [usize; 2]) -> Option<Window> {
+    let points = || response.branches.iter().flat_map(|branch| &branch.points).filter(|point| point.feasible);
+    let along = |species: usize| {
+        let bound = study.world.prepared.bounds.get(species)?;
+        Some(around([bound.lower, bound.upper], points().filter_map(|point| point.state.get(species).copied())))
+    };
+    Some(Window { x: along(axes[0])?, y: along(axes[1])? })
+}
+
+/// Where things stand on the screen.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub struct Parts {
+    /// What is picked and how it is lost, in words.
+    pub sentence: Area,
+    /// The control against the quantity.
+    pub plot: Area,
+    /// The plot's signs.
+    pub signs: Area,
+    /// The states at the rule, one a row, and the numbers of the one that is picked.
+    pub states: Area,
+    /// The thresholds, in words.
+    pub thresholds: Area,
+    /// The sketch of what is at the rule, where there is room for it.
+    pub sketch: Option<Area>,
+}
+
+/// Columns from which on there is room for a sketch.
+const WIDE: u16 = 120;
+/// Columns of the lists beside the plot, at least and at most.
+const LISTS: [u16; 2] = [25, 44];
+
+/// Where things stand, with so many states at the rule.
+pub fn parts(size: Size, states: usize) -> Parts {
+    let body = frame(size).body;
+    if size.columns < WIDE {
+        let (sentence, rest) = body.top(3);
+        let (signs, rest) = rest.bottom(if size.columns < 76 { 2 } else { 1 });
+        let (right, left) = {
+            let (left, right) = rest.left(rest.columns - (rest.columns * 2 / 5).clamp(LISTS[0], LISTS[1]).min(rest.columns));
+            (Area { x: right.x + 1, columns: right.columns.saturating_sub(1), ..right }, left)
+        };
+        let (states, thresholds) = right.top(listed(states, right.rows) + 4);
+        return Parts { sentence, plot: left, signs, states, thresholds, sketch: None };
+    }
+    let (sentence, rest) = body.top(2);
+    let (left, right) = rest.left(rest.columns / 2);
+    let right = Area { x: right.x + 1, columns: right.columns.saturating_sub(1), ..right };
+    let (upper, thresholds) = left.top(left.rows * 2 / 3);
+    let (signs, plot) = upper.bottom(1);
+    let (sketch, states) = right.top(right.rows * 3 / 5);
+    Parts { sentence, plot, signs, states, thresholds, sketch: Some(sketch) }
+}
+
+/// Rows for the list of states, with its heading; at most a third of what there is.
+pub fn listed(states: usize, rows: u16) -> u16 {
+    u16::try_from(states.max(1)).unwrap_or(u16::MAX).saturating_add(1).min((rows / 3).max(2))
+}
+
+/// Columns and rows of the plot.
+pub fn room(area: Area) -> sketch::Size {
+    sketch::Size { columns: area.columns.into(), rows: area.rows.into() }
+}
+
+/// Whether what is shown was found with the values of now.
+pub fn is_fresh(study: &Study) -> bool {
+    study.slot().is_some_and(Slot::is_fresh)
+}
