@@ -2,9 +2,9 @@
 
 use super::paint::Page;
 use crate::app::action::{Action, Axis, Direction, Step};
+use crate::app::desk::Job;
 use crate::app::geometry::{Area, SMALLEST};
 use crate::app::keymap::{Place, key_of, place};
-use crate::app::desk::Job;
 use crate::app::{Answer, App, Screen, Study};
 use crate::report::grid::Ink;
 use unicode_width::UnicodeWidthStr;

@@ -7,8 +7,8 @@
 mod states;
 mod words;
 
-pub use states::{State, chosen_branch, picked, states, there};
-pub use words::{row, sentence};
+pub use states::{State, chosen_branch, picked, place, states, there};
+pub use words::{amounts, rows, sentence, varied};
 
 use std::sync::Arc;
 
@@ -100,13 +100,8 @@ const BUDGET: f64 = 2.0;
 pub fn at_rule(app: &App, study: &Study) -> Option<Task> {
     let (world, scene) = study.slot().and_then(|slot| slot.found.clone())?;
     let (control, at) = (control(study)?, rule(study)?);
-    let task = Task::Cut {
-        world,
-        scenario: scene.scenario,
-        parameter: control.parameter,
-        at,
-        budget: app.budget.min(BUDGET),
-    };
+    let task =
+        Task::Cut { world, scenario: scene.scenario, parameter: control.parameter, at, budget: app.budget.min(BUDGET) };
     (at.to_bits() != control.present.to_bits()).then_some(task)
 }
 
@@ -186,7 +181,8 @@ pub fn parts(size: Size, states: usize) -> Parts {
         let (sentence, rest) = body.top(3);
         let (signs, rest) = rest.bottom(if size.columns < 76 { 2 } else { 1 });
         let (right, left) = {
-            let (left, right) = rest.left(rest.columns - (rest.columns * 2 / 5).clamp(LISTS[0], LISTS[1]).min(rest.columns));
+            let (left, right) =
+                rest.left(rest.columns - (rest.columns * 2 / 5).clamp(LISTS[0], LISTS[1]).min(rest.columns));
             (Area { x: right.x + 1, columns: right.columns.saturating_sub(1), ..right }, left)
         };
         let (states, thresholds) = right.top(listed(states, right.rows) + 4);

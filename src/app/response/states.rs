@@ -61,7 +61,8 @@ pub fn states(app: &App, study: &Study) -> Vec<State> {
         let equilibrium = &solved.equilibria.list[place];
         let linear = solved.assessment.equilibria.get(place).and_then(|one| one.linear.as_ref().ok());
         let nearest = nearest(&free, &equilibrium.state, &size(study));
-        let (met, name) = nearest.and_then(|k| free[k].take()).map_or((None, None), |(met, name)| (Some(met), Some(name)));
+        let (met, name) =
+            nearest.and_then(|k| free[k].take()).map_or((None, None), |(met, name)| (Some(met), Some(name)));
         let own = study.names(study.current).get(place).filter(|_| own_names).cloned();
         State {
             name: own.or(name).unwrap_or_default(),
