@@ -75,7 +75,10 @@ pub(super) fn status(app: &App, page: &mut Page<'_>, area: Area) {
 fn following(job: &Job) -> String {
     let known = match &job.partly {
         Some(Answer::Responded(Some(response))) => {
-            format!("{} branches and {} thresholds so far", response.branches.len(), response.thresholds.len())
+            let count =
+                |count: usize, one: &str, many: &str| format!("{count} {}", if count == 1 { one } else { many });
+            let branches = count(response.branches.len(), "branch", "branches");
+            format!("{branches} and {} so far", count(response.thresholds.len(), "threshold", "thresholds"))
         }
         _ => "nothing yet".to_owned(),
     };

@@ -11,14 +11,14 @@ use super::sure::Sure;
 use crate::analysis::response::Response;
 use crate::app::geometry::Area;
 use crate::app::response::{
-    Parts, State, at_rule, control, known, listed, painting, parts, place, room, rows, rule, sentence, states, there,
-    varied, view,
+    Parts, State, at_rule, control, known, painting, parts, place, room, rows, rule, sentence, states, there, varied,
+    view,
 };
 use crate::app::{App, Study};
 use crate::report::grid::Ink;
 use crate::report::kinds;
-use crate::report::response::plot::{drawing, signs};
-use crate::report::response::words::{setting, taking, taking_unit, with_unit};
+use crate::report::response::plot::{drawing, marked, signs};
+use crate::report::response::words::{taking, taking_unit, with_unit};
 use crate::report::table::{Case, human};
 
 /// The whole screen.
@@ -33,7 +33,7 @@ pub(super) fn draw(app: &App, study: &Study, page: &mut Page<'_>) {
     let Some(control) = control(study) else { return };
     let Some((response, _)) = known(app, study) else {
         page.text(parts.plot, [8, parts.plot.rows / 2], "following branches", Ink::Faint);
-        here(app, study, &all, page, parts.states);
+        here(app, study, &all, page, &parts);
         sketch(app, study, page, &parts);
         return;
     };
@@ -41,7 +41,7 @@ pub(super) fn draw(app: &App, study: &Study, page: &mut Page<'_>) {
         page.grid(parts.plot, &drawing(&view, room(parts.plot), page.style));
         items(&signs(&view, room(parts.plot), page.style), page, parts.signs);
     }
-    here(app, study, &all, page, parts.states);
+    here(app, study, &all, page, &parts);
     let heading = format!("Thresholds, {}", varied(study.model(), control.parameter, [control.from, control.to]));
     thresholds(study, response, &heading, page, parts.thresholds);
     sketch(app, study, page, &parts);
@@ -62,52 +62,63 @@ fn items(signs: &[(String, String)], page: &mut Page<'_>, area: Area) {
 
 /// Columns for the sign, the mark of proof and the name of a state.
 const NAMED: u16 = 8;
-/// Columns of an abundance.
-const ABUNDANCE: u16 = 8;
+/// Columns of an abundance, where there is room, and where there is not but the numbers are short.
+const ABUNDANCE: [u16; 2] = [10, 8];
 
-/// The states at the rule, one a row, and below them the numbers of the one that is picked.
-fn here(app: &App, study: &Study, all: &[State], page: &mut Page<'_>, area: Area) {
-    let rows = listed(all.len(), area.rows);
-    let (list, rest) = area.top(rows);
-    let Some(at) = rule(study).zip(control(study)) else { return };
-    let text = setting(study.model(), at.1.parameter, at.0);
-    page.text(list, [0, 0], &text, Ink::Strong);
-    let shown = usize::from(list.columns.saturating_sub(NAMED) / ABUNDANCE);
-    let species = study.model().species.len();
-    let count = if species <= shown { species } else { shown.saturating_sub(1) };
-    let fits = NAMED + count as u16 * ABUNDANCE <= list.columns && text.width() < usize::from(NAMED);
-    for (place, one) in study.model().species.iter().take(count).enumerate().filter(|_| fits) {
-        right(page, list, 0, place, &one.symbol, Ink::Faint);
+/// The states at the rule, one a row, and the numbers of the one that is picked.
+fn here(app: &App, study: &Study, all: &[State], page: &mut Page<'_>, parts: &Parts) {
+    let list = parts.states;
+    let species = &study.model().species;
+    let width = width(all, species.len(), list.columns);
+    let count = species.len().min(usize::from(list.columns.saturating_sub(NAMED) / width));
+    let hidden = species.len() - count;
+    let heading = if hidden > 0 { format!("{} {hidden} more", more(page.style)) } else { "at rule".to_owned() };
+    page.text(Area { columns: NAMED, ..list }, [0, 0], &heading, Ink::Faint);
+    for (place, one) in species.iter().take(count).enumerate() {
+        right(page, list, [0, width], place, &one.symbol, Ink::Strong);
     }
     let chosen = place(study, all);
-    let visible = usize::from(rows.saturating_sub(1));
-    for (row, (place, state)) in all.iter().enumerate().skip(study.responding.from).take(visible).enumerate() {
+    let visible = usize::from(list.rows.saturating_sub(1));
+    let from = study.responding.from;
+    for (row, (place, state)) in all.iter().enumerate().skip(from).take(visible).enumerate() {
         let row = row as u16 + 1;
-        line(app, study, state, count, page, list, row);
+        line(app, study, state, [count as u16, width], page, list, row);
         if Some(place) == chosen {
             page.row(list, row, Ink::Chosen);
         }
     }
-    let hidden = all.len().saturating_sub(visible);
-    if hidden > 0 {
-        let text = format!("{} {} of {}", more(page.style), visible, all.len());
-        page.text(list, [list.columns.saturating_sub(text.width() as u16), 0], &text, Ink::Faint);
+    if all.is_empty() {
+        page.text(list, [0, 1], "no state is known", Ink::Faint);
+    }
+    if all.len() > visible {
+        let text = format!("{} to {} of {}", from + 1, from + visible, all.len());
+        let end = NAMED + count as u16 * width + 2;
+        page.text(list, [end.max(list.columns.saturating_sub(text.len() as u16)), 0], &text, Ink::Faint);
     }
     if let Some(state) = chosen.and_then(|place| all.get(place)) {
-        numbers(app, study, state, page, rest);
+        numbers(app, study, state, page, parts.numbers);
     }
 }
 
-fn line(app: &App, study: &Study, state: &State, count: usize, page: &mut Page<'_>, area: Area, row: u16) {
+/// Columns of an abundance: fewer where only so all species have room, and no number needs more.
+fn width(all: &[State], species: usize, columns: u16) -> u16 {
+    let [ample, narrow] = ABUNDANCE;
+    let fits = |width: u16| NAMED as usize + species * usize::from(width) <= columns.into();
+    let is_short = |x: &f64| human(*x).width() < usize::from(narrow);
+    let may_be_narrow = fits(narrow) && all.iter().flat_map(|one| &one.state).all(is_short);
+    if !fits(ample) && may_be_narrow { narrow } else { ample }
+}
+
+fn line(app: &App, study: &Study, state: &State, [count, width]: [u16; 2], page: &mut Page<'_>, area: Area, row: u16) {
     let look = state.kind.map_or(kinds::UNKNOWN, kinds::of);
     let sign = page.either(look.glyph, look.ascii);
     let winds = if look.spirals { kinds::SPIRALS } else { ' ' };
     page.text(area, [0, row], &format!("{sign}{winds} {}", state.name), Ink::Strong);
     let (mark, ink) = sure(app, study, state).mark(page);
     page.text(area, [NAMED - 2, row], &mark.to_string(), ink);
-    for (place, &x) in state.state.iter().take(count).enumerate() {
+    for (place, &x) in state.state.iter().take(count.into()).enumerate() {
         let text = if x == 0.0 { page.either('·', '.').to_string() } else { human(x) };
-        right(page, area, row, place, &text, Ink::Plain);
+        right(page, area, [row, width], place, &text, Ink::Plain);
     }
 }
 
@@ -120,9 +131,9 @@ fn sure(app: &App, study: &Study, state: &State) -> Sure {
     Sure::of(solved.equilibria.list.get(place).is_some_and(|one| one.proven), linear)
 }
 
-fn right(page: &mut Page<'_>, area: Area, row: u16, place: usize, text: &str, ink: Ink) {
-    let end = NAMED + (place as u16 + 1) * ABUNDANCE;
-    let width = (text.width() as u16).min(ABUNDANCE - 1);
+fn right(page: &mut Page<'_>, area: Area, [row, columns]: [u16; 2], place: usize, text: &str, ink: Ink) {
+    let end = NAMED + (place as u16 + 1) * columns;
+    let width = (text.width() as u16).min(columns - 1);
     page.text(Area { columns: end.min(area.columns), ..area }, [end.saturating_sub(width), row], text, ink);
 }
 
@@ -133,7 +144,9 @@ fn numbers(app: &App, study: &Study, state: &State, page: &mut Page<'_>, area: A
     if let (Some((world, scene, solved)), Some(place)) = (searched, state.found) {
         let ids: Vec<String> = vec![state.name.clone(); solved.equilibria.list.len()];
         let case = Case { model: &world.original.model, bounds: &world.prepared.bounds, scene, solved, ids: &ids };
-        facts(&case, place, study.facts_from, page, area);
+        // Type and proof are in the list above.
+        let from = case.facts(place, false).iter().take_while(|fact| SAID.contains(&fact.label.as_str())).count();
+        facts(&case, place, from, page, area);
         return;
     }
     let Some((response, _)) = known(app, study) else { return };
@@ -151,28 +164,65 @@ fn numbers(app: &App, study: &Study, state: &State, page: &mut Page<'_>, area: A
     }
 }
 
-/// Each threshold with its mark, in words, the one at the rule first among those that do not fit.
+/// What a list of facts begins with that the row of the state says too.
+const SAID: [&str; 2] = ["type", "state (error)"];
+
+/// Each threshold with its mark, in words; where not all fit, from the one at the rule on.
 fn thresholds(study: &Study, response: &Response, heading: &str, page: &mut Page<'_>, area: Area) {
+    let heading = if heading.width() <= area.columns.into() { heading } else { "Thresholds" };
     page.text(area, [0, 0], heading, Ink::Strong);
     let (_, area) = area.top(1);
-    let all = rows(study, response);
+    let width = usize::from(area.columns.saturating_sub(2));
+    let all: Vec<Vec<String>> = rows(study, response).iter().map(|text| wrapped(text, width)).collect();
     if all.is_empty() {
         page.text(area, [0, 0], "None was found.", Ink::Plain);
     }
-    let mut row = 0;
-    for (place, text) in all.iter().enumerate().skip(study.responding.thresholds_from) {
-        let lines = wrapped(text, usize::from(area.columns.saturating_sub(2)));
-        let is_last = place + 1 == all.len();
-        if row + lines.len() as u16 + u16::from(!is_last) > area.rows {
-            let text = format!("{} {} more", more(page.style), all.len() - place);
-            page.text(area, [0, row.min(area.rows.saturating_sub(1))], &text, Ink::Faint);
-            return;
-        }
-        for (k, line) in lines.iter().enumerate() {
-            page.text(area, [if k == 0 { 0 } else { 2 }, row], line, Ink::Plain);
-            row += 1;
+    let marked = marked(response);
+    let here = rule(study).and_then(|at| marked.iter().position(|&place| response.thresholds[place].at == at));
+    let from = first_shown(&all, nearest(study, response, &marked), usize::from(area.rows));
+    let lines: Vec<(usize, String)> = entries(&all, from);
+    let room = usize::from(area.rows);
+    let is_cut = lines.len() > room || from > 0;
+    let shown = if is_cut { room.saturating_sub(1) } else { room };
+    for (row, (place, line)) in lines.iter().take(shown).enumerate() {
+        page.text(area, [0, row as u16], line, Ink::Plain);
+        if Some(*place) == here {
+            page.row(area, row as u16, Ink::Chosen);
         }
     }
+    if is_cut {
+        let below = lines.get(shown).map_or(0, |(place, _)| all.len() - place);
+        let text = format!("{} {from} above, {below} below", more(page.style));
+        page.text(area, [0, shown.min(lines.len()) as u16], &text, Ink::Faint);
+    }
+}
+
+/// The lines of entries from one on, each with the place of its entry; all but the first of an entry are indented.
+fn entries(all: &[Vec<String>], from: usize) -> Vec<(usize, String)> {
+    let lines = |(place, lines): (usize, &Vec<String>)| {
+        let indented = |(k, line): (usize, &String)| (place, if k == 0 { line.clone() } else { format!("  {line}") });
+        lines.iter().enumerate().map(indented).collect::<Vec<_>>()
+    };
+    all.iter().enumerate().skip(from).flat_map(lines).collect()
+}
+
+/// The threshold next to the rule, among those that are marked.
+fn nearest(study: &Study, response: &Response, marked: &[usize]) -> usize {
+    let Some(at) = rule(study) else { return 0 };
+    let apart = |place: usize| (response.thresholds[place].at - at).abs();
+    (0..marked.len()).min_by(|&a, &b| apart(marked[a]).total_cmp(&apart(marked[b]))).unwrap_or(0)
+}
+
+/// The first entry to be shown so that the wanted one is in sight, and as many before it as fit with all that follow.
+fn first_shown(entries: &[Vec<String>], wanted: usize, rows: usize) -> usize {
+    let after: usize = entries.iter().skip(wanted).map(Vec::len).sum();
+    let mut used = after;
+    let mut first = wanted;
+    while first > 0 && used + entries[first - 1].len() <= rows {
+        first -= 1;
+        used += entries[first].len();
+    }
+    first
 }
 
 fn sketch(app: &App, study: &Study, page: &mut Page<'_>, parts: &Parts) {

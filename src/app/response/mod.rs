@@ -37,8 +37,6 @@ pub struct Responding {
     pub pick: Pick,
     /// The first state that is listed.
     pub from: usize,
-    /// The first threshold that is listed.
-    pub thresholds_from: usize,
 }
 
 /// Which state at the rule is picked.
@@ -161,8 +159,10 @@ pub struct Parts {
     pub plot: Area,
     /// The plot's signs.
     pub signs: Area,
-    /// The states at the rule, one a row, and the numbers of the one that is picked.
+    /// The states at the rule, one a row below a heading.
     pub states: Area,
+    /// The numbers of the one that is picked.
+    pub numbers: Area,
     /// The thresholds, in words.
     pub thresholds: Area,
     /// The sketch of what is at the rule, where there is room for it.
@@ -174,30 +174,38 @@ const WIDE: u16 = 120;
 /// Columns of the lists beside the plot, at least and at most.
 const LISTS: [u16; 2] = [25, 44];
 
+/// Rows for the numbers of the state that is picked, where thresholds stand below them.
+const NUMBERS: u16 = 4;
+
 /// Where things stand, with so many states at the rule.
 pub fn parts(size: Size, states: usize) -> Parts {
     let body = frame(size).body;
     if size.columns < WIDE {
         let (sentence, rest) = body.top(3);
         let (signs, rest) = rest.bottom(if size.columns < 76 { 2 } else { 1 });
-        let (right, left) = {
-            let (left, right) =
-                rest.left(rest.columns - (rest.columns * 2 / 5).clamp(LISTS[0], LISTS[1]).min(rest.columns));
-            (Area { x: right.x + 1, columns: right.columns.saturating_sub(1), ..right }, left)
-        };
-        let (states, thresholds) = right.top(listed(states, right.rows) + 4);
-        return Parts { sentence, plot: left, signs, states, thresholds, sketch: None };
+        let lists = (rest.columns * 2 / 5).clamp(LISTS[0], LISTS[1]);
+        let (plot, right) = beside(rest, rest.columns.saturating_sub(lists));
+        let (states, rest) = right.top(listed(states, right.rows));
+        let (numbers, thresholds) = rest.top(NUMBERS.min(right.rows / 4));
+        return Parts { sentence, plot, signs, states, numbers, thresholds, sketch: None };
     }
     let (sentence, rest) = body.top(2);
-    let (left, right) = rest.left(rest.columns / 2);
-    let right = Area { x: right.x + 1, columns: right.columns.saturating_sub(1), ..right };
+    let (left, right) = beside(rest, rest.columns / 2);
     let (upper, thresholds) = left.top(left.rows * 2 / 3);
     let (signs, plot) = upper.bottom(1);
-    let (sketch, states) = right.top(right.rows * 3 / 5);
-    Parts { sentence, plot, signs, states, thresholds, sketch: Some(sketch) }
+    let (sketch, right) = right.top(right.rows * 3 / 5);
+    let (states, numbers) = right.top(listed(states, right.rows));
+    Parts { sentence, plot, signs, states, numbers, thresholds, sketch: Some(sketch) }
 }
 
-/// Rows for the list of states, with its heading; at most a third of what there is.
+/// Two parts, of which the left has so many columns, with a blank one between them.
+fn beside(area: Area, columns: u16) -> (Area, Area) {
+    let (left, right) = area.left(columns);
+    let right = Area { x: right.x + 1, columns: right.columns.saturating_sub(1), ..right };
+    (left, right)
+}
+
+/// Rows for the list of states with its heading; at most a third of what there is.
 pub fn listed(states: usize, rows: u16) -> u16 {
     u16::try_from(states.max(1)).unwrap_or(u16::MAX).saturating_add(1).min((rows / 3).max(2))
 }
@@ -210,4 +218,39 @@ pub fn room(area: Area) -> sketch::Size {
 /// Whether what is shown was found with the values of now.
 pub fn is_fresh(study: &Study) -> bool {
     study.slot().is_some_and(Slot::is_fresh)
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn parts_fit_and_do_not_overlap() {
+        for columns in [0, 1, 59, 60, 75, 76, 80, 119, 120, 200, 500] {
+            for rows in [0, 1, 5, 19, 20, 24, 50, 200] {
+                for states in [0, 1, 4, 70] {
+                    let size = Size { columns, rows };
+                    let parts = parts(size, states);
+                    let Parts { sentence, plot, signs, states, numbers, thresholds, sketch } = parts;
+                    let all = [sentence, plot, signs, states, numbers, thresholds];
+                    let all: Vec<Area> = all.into_iter().chain(sketch).filter(|one| one.rows > 0).collect();
+                    for (k, one) in all.iter().enumerate() {
+                        assert!(
+                            one.x + one.columns <= columns.max(one.x) && one.y + one.rows <= rows,
+                            "{size:?}: {one:?}"
+                        );
+                        let is_apart = |other: &Area| {
+                            let across = one.x + one.columns <= other.x || other.x + other.columns <= one.x;
+                            across || one.y + one.rows <= other.y || other.y + other.rows <= one.y
+                        };
+                        assert!(size.is_too_small() || all[..k].iter().all(is_apart), "{size:?}: {parts:?}");
+                    }
+                    if !size.is_too_small() {
+                        assert!(plot.columns >= 30 && plot.rows >= 8 && parts.states.rows >= 2, "{size:?}: {parts:?}");
+                        assert!(parts.numbers.rows >= 3 && parts.thresholds.rows >= 4, "{size:?}: {parts:?}");
+                    }
+                }
+            }
+        }
+    }
 }

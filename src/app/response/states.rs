@@ -4,7 +4,6 @@ use std::sync::Arc;
 
 use super::{Pick, at_rule, known, rule};
 use crate::analysis::linearise::Kind;
-use crate::analysis::response::Response;
 use crate::app::study::World;
 use crate::app::task::Answer;
 use crate::app::{App, Study};
@@ -42,8 +41,8 @@ pub fn states(app: &App, study: &Study) -> Vec<State> {
     let at = rule(study);
     let response = known(app, study).map(|(response, _)| response);
     let met = response.zip(at).map_or_else(Vec::new, |(response, at)| cut(response, at));
-    let names: Vec<String> =
-        met.iter().map(|one| response.map_or_else(String::new, |response| name(study, response, one))).collect();
+    let joined = response.map_or_else(Vec::new, |response| cut(response, response.control.present));
+    let names: Vec<String> = met.iter().map(|one| name(study, &joined, one)).collect();
     let found = there(app, study);
     let Some(solved) = found.as_ref().and_then(|(_, scene)| scene.outcome.as_ref().ok()) else {
         let state = |(met, name): (Met, String)| State {
@@ -125,8 +124,7 @@ fn nearest(free: &[Option<(Met, String)>], state: &[f64], size: &[f64]) -> Optio
 }
 
 /// The name of the equilibrium that a state is joined to by its part of the branch; else the branch's own, counted from 1.
-fn name(study: &Study, response: &Response, met: &Met) -> String {
-    let joined = cut(response, response.control.present);
+fn name(study: &Study, joined: &[Met], met: &Met) -> String {
     let same = joined.iter().find(|other| other.branch == met.branch && other.stretch == met.stretch);
     let named = same.and_then(|same| equilibrium(study.solved()?, study, same));
     named.unwrap_or_else(|| format!("B{}", met.branch + 1))

@@ -5,7 +5,7 @@ use super::values;
 use crate::app::action::{Action, Step};
 use crate::app::geometry::scrolled;
 use crate::app::response::{
-    Pick, Responding, State, control, controls, fine_step, known, listed, parameter, parts, place, rule, states,
+    Pick, Responding, State, control, controls, fine_step, known, parameter, parts, place, rule, states,
 };
 use crate::app::trial::{COARSE, neat};
 use crate::app::{App, Screen, Study};
@@ -36,7 +36,7 @@ pub(super) fn show(study: &mut Study) {
 pub(super) fn walk(app: &mut App, step: Step) {
     let Some(study) = &app.study else { return };
     let all = states(app, study);
-    let page = usize::from(listed(all.len(), parts(app.size, all.len()).states.rows));
+    let page = usize::from(parts(app.size, all.len()).states.rows.saturating_sub(1).max(1));
     let Some(now) = place(study, &all) else { return };
     let next = stepped(now, all.len(), page, step);
     let pick = pick(&all, next);
@@ -56,10 +56,14 @@ fn pick(all: &[State], place: usize) -> Pick {
 fn move_to(app: &mut App, at: f64) {
     let Some(study) = &app.study else { return };
     let all = states(app, study);
-    let kept = place(study, &all).map(|place| pick(&all, place));
+    // Who is on a branch is looked for there at whatever value, also after it was gone for a while.
+    let kept = match (study.responding.pick, place(study, &all)) {
+        (Pick::Selected | Pick::Place(_), Some(place)) => pick(&all, place),
+        (kept, _) => kept,
+    };
     let (Some(control), current) = (control(study), study.current) else { return };
     let Some(study) = &mut app.study else { return };
-    study.responding.pick = kept.unwrap_or_default();
+    study.responding.pick = kept;
     let key = (current, control.parameter);
     let rules = &mut study.responding.rules;
     rules.retain(|(other, _)| *other != key);
@@ -157,7 +161,7 @@ pub(super) fn settle(app: &mut App) {
     let parts = parts(app.size, all.len());
     let chosen = place(study, &all).unwrap_or(0);
     let count = controls(study).len();
-    let room = usize::from(listed(all.len(), parts.states.rows).saturating_sub(1));
+    let room = usize::from(parts.states.rows.saturating_sub(1));
     let from = scrolled(study.responding.from, chosen, all.len(), room);
     let Some(study) = &mut app.study else { return };
     study.responding.control = study.responding.control.min(count.saturating_sub(1));

@@ -66,7 +66,7 @@ pub fn name(model: &Model, parameter: ParameterId) -> &str {
 /// A parameter's unit; empty where it has none.
 pub fn unit(model: &Model, parameter: ParameterId) -> &str {
     let unit = model.parameters.get(parameter.0).and_then(|parameter| parameter.unit.as_ref());
-    unit.map_or("", |unit| &unit.value).trim_matches('1')
+    unit.map(|unit| unit.value.as_str()).filter(|unit| *unit != "1").unwrap_or_default()
 }
 
 /// A value of a parameter with its name and unit: `E = 1.830`, `nets = 13.33 net`.

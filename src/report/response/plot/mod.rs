@@ -88,7 +88,8 @@ fn species_caption(model: &Model, species: usize) -> String {
     } else {
         format!("{} {}", species.symbol, species.name)
     };
-    with_unit(&name, species.unit.as_ref().map_or("", |unit| &unit.value).trim_matches('1'))
+    let unit = species.unit.as_ref().map(|unit| unit.value.as_str());
+    with_unit(&name, unit.filter(|unit| *unit != "1").unwrap_or_default())
 }
 
 fn taking_caption(model: &Model, response: &Response, place: usize) -> String {
