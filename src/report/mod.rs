@@ -1,8 +1,9 @@
 //! What is shown of a model and its results, as text and as data; no terminal, no files.
 //!
 //! [`check`] says what was understood of a model file, [`table`] what equilibria its scenarios have, [`sketch`] draws their
-//! direction field, [`compare`] puts scenarios side by side, [`response`] varies a control, [`course`] shows what happens after a knock, [`interactions`]
-//! who acts on whom, [`rows`] saves these two, [`kinds`] is how each kind of equilibrium is written, [`grid`] holds what is drawn in cells, `layout`
+//! direction field, [`compare`] puts scenarios side by side, [`response`] shows how equilibria answer to a control,
+//! [`course`] what happens after a knock, [`interactions`] who acts on whom, [`rows`] saves these two, [`kinds`] is how each
+//! kind of equilibrium is written, [`grid`] holds what is drawn in cells, `layout`
 //! breaks lines.
 
 pub mod check;

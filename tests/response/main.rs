@@ -2,4 +2,12 @@
 
 #![allow(clippy::expect_used, clippy::panic, clippy::unwrap_used, reason = "a test fails by panicking")]
 
+#[path = "../common/mod.rs"]
+mod common;
+
+mod by_hand;
+mod closest;
+mod margins;
 mod plot;
+mod support;
+mod yields;

@@ -6,15 +6,24 @@
 //! has a scenario's rows with controls as inputs; start there for anything that moves a parameter.
 
 mod advice;
-pub mod bands;
+mod bands;
+mod closest;
+mod defining;
 pub mod equations;
 mod footing;
+pub mod locate;
+mod margins;
 mod open_access;
+mod ray;
 mod removal;
 mod stretches;
+mod surface;
+mod watch;
 mod yields;
 
 pub use advice::advise;
+pub use bands::band;
+pub use margins::margins;
 
 use nalgebra::Complex;
 

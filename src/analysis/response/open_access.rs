@@ -22,10 +22,11 @@ pub(super) fn settling(ledger: &mut Ledger<'_>, stable: &[Stretch], stop: &dyn F
             }
             let Some(mut standing) = ledger.standing(stretch) else { continue };
             let points = stretch.points_of(response);
+            let most = stretch.span(response)[1];
             let spots: Vec<Vec<f64>> =
                 points.iter().map(|point| standing.footing.spot(&point.state, point.at)).collect();
             for pair in spots.windows(2) {
-                let Some(spot) = falling(&mut standing, [&pair[0], &pair[1]], place) else { continue };
+                let Some(spot) = falling(&mut standing, [&pair[0], &pair[1]], place, most) else { continue };
                 let (at, state) = (spot[spot.len() - 1], standing.footing.state(&spot));
                 found.push(OpenAccess { harvest: taking.harvest.clone(), at, state, branch: stretch.branch });
             }
@@ -36,13 +37,14 @@ pub(super) fn settling(ledger: &mut Ledger<'_>, stable: &[Stretch], stop: &dyn F
     all
 }
 
-/// The spot between two at which the value is 0, if it falls from above 0 to below as the control grows.
-fn falling(standing: &mut Standing<'_>, ends: [&[f64]; 2], place: usize) -> Option<Vec<f64>> {
+/// The spot between two at which the value is 0, if it falls from above 0 to below as the control grows. Where the stretch
+/// ends, at `most`, a value of 0 goes on to nothing: a stock that is lost has none.
+fn falling(standing: &mut Standing<'_>, ends: [&[f64]; 2], place: usize, most: f64) -> Option<Vec<f64>> {
     let last = ends[0].len() - 1;
     let [low, high] = if ends[0][last] <= ends[1][last] { ends } else { [ends[1], ends[0]] };
     let values = [standing.amount(low, &[place])?, standing.amount(high, &[place])?];
     // At the far end 0 counts, so that a point on it counts once.
-    if values[0] <= 0.0 || values[1] > 0.0 {
+    if values[0] <= 0.0 || values[1] > 0.0 || (values[1] == 0.0 && high[last] >= most) {
         return None;
     }
     let chord = standing.chord(low, high);

@@ -146,7 +146,8 @@ fn stationary(standing: &mut Standing<'_>, ends: [&[f64]; 2], parts: &[usize]) -
     let length = dot(&chord, &chord).sqrt();
     let border: Vec<f64> = chord.iter().map(|part| part / length).collect();
     let slopes = [0, 1].map(|end| slope(standing, ends[end], &border, parts));
-    if slopes[0]? <= 0.0 || slopes[1]? >= 0.0 {
+    let (first, last) = (slopes[0]?, slopes[1]?);
+    if first.value <= first.room || last.value >= -last.room {
         return None;
     }
     let mut found = None;
@@ -155,18 +156,23 @@ fn stationary(standing: &mut Standing<'_>, ends: [&[f64]; 2], parts: &[usize]) -
         standing.correct_across(&mut spot, &border)?;
         let slope = slope(standing, &spot, &border, parts)?;
         found = Some(spot);
-        Some(slope)
+        Some(slope.value)
     };
-    crossing(&mut at, slopes[0]?, 1.0)?;
+    crossing(&mut at, first.value, 1.0)?;
     found
 }
 
-/// The yield's slope along the curve, towards the border; 0 where it is so to rounding.
-fn slope(standing: &mut Standing<'_>, spot: &[f64], border: &[f64], parts: &[usize]) -> Option<f64> {
+/// A slope, and what it has to exceed to be told from 0.
+#[derive(Clone, Copy)]
+struct Slope {
+    value: f64,
+    room: f64,
+}
+
+/// The yield's slope along the curve, towards the border.
+fn slope(standing: &mut Standing<'_>, spot: &[f64], border: &[f64], parts: &[usize]) -> Option<Slope> {
     let tangent = standing.tangent(spot, border)?;
     let (_, gradient) = standing.taken(spot, parts)?;
     let scaled: Vec<f64> = gradient.iter().zip(&standing.scale).map(|(slope, scale)| slope * scale).collect();
-    let slope = dot(&scaled, &tangent);
-    let size = dot(&scaled, &scaled).sqrt();
-    Some(if slope.abs() <= FLAT * size { 0.0 } else { slope })
+    Some(Slope { value: dot(&scaled, &tangent), room: FLAT * dot(&scaled, &scaled).sqrt() })
 }

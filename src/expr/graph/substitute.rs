@@ -1,4 +1,5 @@
-//! The same rows with some parameters known to be 0: a quota of nothing, an effort of nothing.
+//! The same rows with something put in another's place: 0 for some parameters (a quota of nothing, an effort of nothing),
+//! or one smooth piece for a choice between two.
 
 use std::collections::HashMap;
 
@@ -20,6 +21,21 @@ impl Graph {
             let rebuilt = match self.operation(node) {
                 Operation::Parameter(i) if values[i] == 0.0 => self.zero(),
                 operation => self.rebuild(operation.map(|operand| new[&operand])),
+            };
+            new.insert(node, rebuilt);
+        }
+        nodes.iter().map(|node| new[node]).collect()
+    }
+
+    /// The nodes with one node put in the place of another, for all that is made of it.
+    pub fn replaced(&mut self, nodes: &[NodeId], what: NodeId, by: NodeId) -> Vec<NodeId> {
+        let mut new: HashMap<NodeId, NodeId> = HashMap::new();
+        for node in self.reachable(nodes) {
+            let rebuilt = if node == what {
+                by
+            } else {
+                let operation = self.operation(node);
+                self.rebuild(operation.map(|operand| new[&operand]))
             };
             new.insert(node, rebuilt);
         }

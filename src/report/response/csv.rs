@@ -1,8 +1,8 @@
 //! Responses as CSV (RFC 4180): one rectangle, a row for each point of each branch, each threshold, best yield and band.
 //!
 //! The first field says what a row is, so that a spreadsheet's filter makes one list of it; [`FIELDS`](super::FIELDS) has what
-//! is in the others, empty where a row has none. A scenario that failed has a row all the same. Then come the reason and
-//! what the whole is of, as in the table. Numbers read back exactly.
+//! is in the others, empty where a row has none. Each scenario begins with a row of its own, failed or not, which alone has
+//! the last fields, of what the whole is: points are thousands. Numbers read back exactly.
 
 use serde_json::Value;
 
@@ -14,29 +14,38 @@ use super::super::table::{Style, exact, optional, scene};
 use super::fields::{Chosen, Row};
 use super::sheets::{branch_id, passes};
 use super::words::{criticality, kind, name, taking, taking_unit};
-use super::{One, Responses, is_complete, meaning};
+use super::{One, Responses, is_complete, meaning, summary};
 
 /// The responses: a line of names, then the rows; every line ends in CR LF.
 pub fn csv(responses: &Responses<'_>, chosen: &Chosen, style: Style) -> String {
     let constants = constants(responses.table);
     let names = chosen.names(&of_kinds(responses));
-    let after = std::iter::once("failure").chain(constants.iter().map(|(name, _)| *name)).map(str::to_owned);
+    let after = LAST.into_iter().chain(constants.iter().map(|(name, _)| *name)).map(str::to_owned);
     let head: Vec<Value> = names.iter().cloned().chain(after).map(Value::from).collect();
     let mut text = line(&head, style);
+    let blank = vec![Value::Null; LAST.len() + constants.len()];
     for (scene, one) in responses.each() {
         let base = Row::default().with("scenario", scene::name(responses.table.model, scene));
         let base = base.with("of", name(responses.table.model, responses.control));
-        let (rows, failure) = match &one {
-            Some(one) => (rows(one, &base.with("complete", is_complete(&one.along.response))), Value::Null),
-            None => (vec![base.with("record", "scenario")], failure(responses, scene)),
-        };
-        for row in rows {
-            let common = constants.iter().map(|(_, value)| value.clone());
-            let all = row.values(&names).into_iter().chain([failure.clone()]).chain(common);
-            text.push_str(&line(&all.collect::<Vec<_>>(), style));
+        let base = base.with("complete", one.map(|one| is_complete(&one.along.response)));
+        let own =
+            one.map_or_else(|| base.clone(), |one| base.clone().with("at", exact(one.along.response.control.present)));
+        let last = [said(one.as_ref()), failure(responses, scene)].into_iter();
+        let last: Vec<Value> = last.chain(constants.iter().map(|(_, value)| value.clone())).collect();
+        text.push_str(&line(&[own.with("record", "scenario").values(&names), last].concat(), style));
+        for row in one.iter().flat_map(|one| rows(one, &base)) {
+            text.push_str(&line(&[row.values(&names), blank.clone()].concat(), style));
         }
     }
     text
+}
+
+/// What only the row of a scenario has, before what the whole is of.
+const LAST: [&str; 2] = ["summary", "failure"];
+
+fn said(one: Option<&One<'_>>) -> Value {
+    let said = |one: &One<'_>| summary(&one.setting(), &one.along.advice, one.along.focus, one.along.band.as_ref());
+    one.map_or(Value::Null, |one| said(one).into())
 }
 
 fn failure(responses: &Responses<'_>, scene: &super::Scene) -> Value {
@@ -57,7 +66,8 @@ fn of_kinds(responses: &Responses<'_>) -> Vec<String> {
     all
 }
 
-fn state_name(table: &super::Table<'_>, species: usize) -> String {
+/// The field of a species' abundance.
+pub(super) fn state_name(table: &super::Table<'_>, species: usize) -> String {
     let Some(species) = table.model.species.get(species) else { return String::new() };
     let unit = species.unit.as_ref().map_or_else(String::new, |unit| format!(" ({})", unit.value));
     format!("state {}{unit}", species.symbol)
@@ -84,9 +94,6 @@ fn rows(one: &One<'_>, base: &Row) -> Vec<Row> {
             base.with("equilibrium", passes(one, branch).join(" ")).with("present", symbols(one, &branch.present));
         let points = branch.points.iter().enumerate();
         rows.extend(points.map(|(along, point)| self::point(one, point, &base.clone().with("place", along + 1))));
-    }
-    if rows.is_empty() {
-        rows.push(base.clone().with("record", "scenario"));
     }
     rows
 }

@@ -41,7 +41,7 @@ fn scenario(one: &One<'_>) -> Value {
         "best_yield": along.advice.best.iter().map(|best| best_yield(one, best)).collect::<Vec<_>>(),
         "present": exact(control.present),
         "focus": along.focus.and_then(|place| one.ids.get(place)),
-        "summary": summary(&one.setting(), &along.advice, &along.margins, along.focus),
+        "summary": summary(&one.setting(), &along.advice, along.focus, along.band.as_ref()),
     });
     if let Value::Object(keys) = &mut all {
         keys.extend(coverage(&along.response));
@@ -244,6 +244,7 @@ fn advice(one: &One<'_>, advice: &Advice) -> Map<String, Value> {
             "species": symbol(one, Some(removal.species)),
             "at": optional(removal.at),
             "kind": threshold.map(|threshold| kind(threshold.kind)),
+            "settles_without": removal.settles_without,
         })
     });
     Map::from_iter([("open_access".to_owned(), open.collect()), ("removal".to_owned(), removal.collect())])

@@ -13,33 +13,36 @@ pub struct Field {
     pub id: &'static str,
     /// What it says.
     pub help: &'static str,
+    /// Whether there is one for each species, harvest or parameter.
+    pub each: bool,
 }
 
-const fn field(id: &'static str, help: &'static str) -> Field {
-    Field { id, help }
+pub(super) const fn field(id: &'static str, help: &'static str) -> Field {
+    Field { id, help, each: false }
 }
 
-/// Every field in its order.
+pub(super) const fn each(id: &'static str, help: &'static str) -> Field {
+    Field { id, help, each: true }
+}
+
+/// Every field of responses to one parameter, in its order.
 pub const FIELDS: [Field; 26] = [
-    field(
-        "record",
-        "what the row is: point (of a branch), threshold, best yield, band, or scenario where there is none of these",
-    ),
+    field("record", "what the row is: scenario, threshold, best yield, band, or point of a branch"),
     field("scenario", "the scenario's name"),
     field("of", "the parameter that is varied; of a band the one that it is of"),
-    field("at", "its value; of a band the present one"),
+    field("at", "its value; of a scenario and a band the present one"),
     field("branch", "the branch of a point or a best yield: B1, B2, ..."),
     field("place", "of a point its place along the branch, from 1"),
     field("equilibrium", "the row of the table that a branch passes through at the present value"),
     field("present", "symbols of those present"),
-    field("state", "abundance of each species, in its unit"),
+    each("state", "abundance of each species, in its unit"),
     field("type", "type by the linear part"),
     field("stable", "whether all eigenvalues attract"),
     field("feasible", "whether no abundance is negative, and none outside the search box"),
     field("leading_re", "real part of the leading eigenvalue; of a map, multiplier"),
     field("leading_im", "its imaginary part"),
-    field("yield", "of a point: what each harvest takes of each species, per time unit or step"),
-    field("value", "of a point: what each harvest is worth"),
+    each("yield", "of a point: what each harvest takes of each species, per time unit or step"),
+    each("value", "of a point: what each harvest is worth"),
     field("kind", "of a threshold what happens there; of a best yield and a band how the state is lost"),
     field("criticality", "of a threshold: soft or hard"),
     field("meaning", "of a threshold: what it means for the community"),
@@ -54,7 +57,7 @@ pub const FIELDS: [Field; 26] = [
 
 /// Fields asked for.
 #[derive(Clone, Debug, PartialEq)]
-pub struct Chosen(Vec<&'static str>);
+pub struct Chosen(Vec<Field>);
 
 /// A name that no field has.
 #[derive(Clone, Debug, PartialEq, Eq)]
@@ -67,37 +70,38 @@ pub struct UnknownField {
 
 impl Chosen {
     /// Every field.
-    pub fn all() -> Self {
-        Self(FIELDS.iter().map(|field| field.id).collect())
+    pub fn all(fields: &[Field]) -> Self {
+        Self(fields.to_vec())
     }
 
     /// Reads names with commas between; `all` is every one. Each has its place once, in the order given.
     ///
     /// # Errors
     /// The first name that no field has.
-    pub fn read(list: &str) -> Result<Self, UnknownField> {
-        let mut chosen = Vec::new();
+    pub fn read(list: &str, fields: &[Field]) -> Result<Self, UnknownField> {
+        let mut chosen: Vec<Field> = Vec::new();
         for id in list.split(',').map(str::trim).filter(|id| !id.is_empty()) {
             if id == "all" {
-                return Ok(Self::all());
+                return Ok(Self::all(fields));
             }
-            let known = || FIELDS.iter().map(|field| field.id);
-            let Some(found) = known().find(|known| *known == id) else {
-                return Err(UnknownField { id: id.to_owned(), nearest: nearest(id, known()) });
+            let Some(found) = fields.iter().find(|field| field.id == id) else {
+                return Err(UnknownField {
+                    id: id.to_owned(),
+                    nearest: nearest(id, fields.iter().map(|field| field.id)),
+                });
             };
-            if !chosen.contains(&found) {
-                chosen.push(found);
+            if !chosen.contains(found) {
+                chosen.push(*found);
             }
         }
-        Ok(if chosen.is_empty() { Self::all() } else { Self(chosen) })
+        Ok(if chosen.is_empty() { Self::all(fields) } else { Self(chosen) })
     }
 
-    /// The names of the fields that a file with these has: those of a kind in the order given.
-    pub(super) fn names(&self, of_kinds: &[String]) -> Vec<String> {
-        let of = |id: &&'static str| {
-            let kinds: Vec<String> =
-                of_kinds.iter().filter(|name| name.split(' ').next() == Some(*id)).cloned().collect();
-            if ["state", "yield", "value"].contains(id) { kinds } else { vec![(*id).to_owned()] }
+    /// The names of the fields that a file with these has: those of which there are several in the order given.
+    pub(super) fn names(&self, of_each: &[String]) -> Vec<String> {
+        let of = |field: &Field| {
+            let is_of = |name: &&String| name.split(' ').next() == Some(field.id);
+            if field.each { of_each.iter().filter(is_of).cloned().collect() } else { vec![field.id.to_owned()] }
         };
         self.0.iter().flat_map(of).collect()
     }
@@ -105,9 +109,13 @@ impl Chosen {
 
 /// The fields and what they say, as text.
 pub fn guide() -> String {
-    let line = |field: &Field| super::super::layout::paragraph(&format!("  {}", field.id), field.help, 15, 80);
-    let head = "Fields of restpoint response --format csv, for --columns (all is every one):\n\n";
-    head.to_owned() + &FIELDS.iter().map(line).collect::<String>()
+    let line = |field: &Field| super::super::layout::paragraph(&format!("  {}", field.id), field.help, 16, 80);
+    let lines = |fields: &[Field]| fields.iter().map(line).collect::<String>();
+    format!(
+        "Fields of restpoint response --format csv, for --columns (all is every one):\n\n{}\nWith --of twice:\n\n{}",
+        lines(&FIELDS),
+        lines(&super::chart::FIELDS)
+    )
 }
 
 /// One row: values by the names of fields.

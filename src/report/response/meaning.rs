@@ -42,9 +42,19 @@ pub fn meaning(at: &Setting<'_>, threshold: &Threshold) -> String {
         ThresholdKind::BorderCollision => sentence.border(),
         ThresholdKind::Exit => sentence.exit(),
         ThresholdKind::Continuum => format!("at {} there is a whole line of states of rest", sentence.here()),
-        ThresholdKind::Cusp => "two folds meet: on one side of it a control can be moved without a jump".to_owned(),
-        ThresholdKind::BogdanovTakens => "a fold meets a Hopf threshold: cycles end there".to_owned(),
-        ThresholdKind::GeneralisedHopf => "the onset of cycles turns from soft to hard".to_owned(),
+        kind @ (ThresholdKind::Cusp | ThresholdKind::BogdanovTakens | ThresholdKind::GeneralisedHopf) => {
+            of_point(kind).to_owned()
+        }
+    }
+}
+
+/// What a point on the curves of a chart means; empty for what is no such point.
+pub(super) fn of_point(kind: ThresholdKind) -> &'static str {
+    match kind {
+        ThresholdKind::Cusp => "two folds meet and end: around it a jump can be avoided",
+        ThresholdKind::BogdanovTakens => "a fold meets a Hopf threshold, which ends there, and so do its cycles",
+        ThresholdKind::GeneralisedHopf => "the onset of cycles turns from soft to hard",
+        _ => "",
     }
 }
 
@@ -98,8 +108,9 @@ impl Sentence<'_> {
         let close = CLOSE * (control.to - control.from) + self.threshold.error.abs();
         let is_beyond = |x: f64| if above { x > self.threshold.at + close } else { x < self.threshold.at - close };
         let has = |state: &[f64]| state.get(species).is_some_and(|&x| x > 0.0);
+        let beside = self.feasible().any(|arm| arm.above == above && arm.present.get(species) == Some(&true));
         let points = self.at.response.branches.iter().flat_map(|branch| &branch.points);
-        points.into_iter().any(|point| point.feasible && is_beyond(point.at) && has(&point.state))
+        beside || points.into_iter().any(|point| point.feasible && is_beyond(point.at) && has(&point.state))
     }
 
     /// Whether the picture on that side may lack states for another reason than that branches meet.
@@ -183,8 +194,10 @@ impl Sentence<'_> {
             (Some(true), ..) if !self.is_present_side(above) => format!("{name} can invade {here_side} {here}"),
             (Some(true), ..) => {
                 let lost = with.first().and_then(|arm| self.losers(arm, !above));
-                let dwindles = format!("dwindles to 0 at {here}");
-                lost.map_or_else(|| format!("{name} {dwindles}"), |lost| format!("{lost}: it {dwindles}"))
+                match lost {
+                    Some(lost) => format!("{lost}: {name} dwindles to 0 there"),
+                    None => format!("{name} dwindles to 0 at {here}"),
+                }
             }
             (_, Some(true), Some(false)) => format!(
                 "{name} can invade {other_side} {here}, and there is no state near to settle in: the community jumps \

@@ -2,8 +2,7 @@
 //!
 //! [`Responses`] has it all: the scenarios as in a table, and of each what was found [`Along`] the control. `meaning` says
 //! what a threshold means, `summary` the whole in a few sentences, `said` all else that is said in sentences, `sheets` makes
-//! the tables, `paper` the forms for people of them; `csv` and `data` are for spreadsheets and programs; [`plot`]
-//! draws it in characters. `words` has
+//! the tables, `paper` the forms for people of them, [`plot`] draws; `csv` and `data` are for spreadsheets and programs. `words` has
 //! pieces of sentences. Two controls are in `chart`.
 //!
 //! Branches, thresholds, yields and margins are numerical, and every form says so; only the count of equilibria along the
@@ -22,6 +21,7 @@
 //!   that it passes through), `ends`; in its points: `stable`, `feasible`, `leading`, `value`, `threshold` (place in the list);
 //!   in a best yield: `of` (`yield`, `value` or `total`), `branch`, `nearest`
 
+pub mod chart;
 mod csv;
 mod data;
 mod fields;
@@ -42,9 +42,9 @@ pub use segments::{Segment, segments};
 pub use summary::summary;
 
 use super::table::columns::Glyphs;
-use super::table::{Form, Page, Scene, Solved, Style, Table, pretty};
+use super::table::{Form, Page, Scene, Solved, Style, Table, human, pretty, scene};
 use crate::analysis::paths::Destination;
-use crate::analysis::response::{Advice, Margins, Response};
+use crate::analysis::response::{Advice, Band, Margins, Response};
 use crate::model::{Aim, Model, ParameterId, Role};
 
 /// Scenarios along one control.
@@ -71,6 +71,8 @@ pub struct Along {
     pub advice: Advice,
     /// The state that margins are of, by its place in the scenario's list.
     pub focus: Option<usize>,
+    /// The band of the control itself in which it persists and is stable.
+    pub band: Option<Band>,
     /// How near it is to being lost.
     pub margins: Margins,
 }
@@ -107,9 +109,18 @@ impl<'r> Responses<'r> {
         self.each().all(|(_, one)| one.is_some_and(|one| is_complete(&one.along.response)))
     }
 
-    /// Whether some scenario has no value over a part of the range.
-    pub fn is_undefined_in_part(&self) -> bool {
-        self.along.iter().flatten().any(|along| !along.response.undefined.is_empty())
+    /// Where scenarios have no value over a part of the range, a sentence each.
+    pub fn undefined(&self) -> Vec<String> {
+        let parameter = words::name(self.table.model, self.control);
+        let of = |(scene, one): (&Scene, Option<One<'r>>)| {
+            let name = scene::name(self.table.model, scene);
+            let parts = one.map_or(&[][..], |one| &one.along.response.undefined).iter();
+            let said = parts.map(|(from, to, why)| {
+                format!("{name}: the model has no value from {parameter} = {} to {}: {why}", human(*from), human(*to))
+            });
+            said.collect::<Vec<_>>()
+        };
+        self.each().flat_map(of).collect()
     }
 }
 
@@ -124,7 +135,7 @@ pub fn written(responses: &Responses<'_>, form: Form, page: Page) -> String {
         Form::Csv => csv(responses, responses.chosen, page.style),
         Form::Json => pretty(&json(responses), page.style),
         Form::Text | Form::Markdown | Form::Latex => {
-            paper::written(responses.table, &said::parts(responses, glyphs(form, page)), form, page)
+            paper::written(responses.table, &said::parts(responses, form, page), form, page)
         }
     }
 }

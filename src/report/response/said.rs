@@ -1,24 +1,26 @@
 //! What people are shown of responses, in order: sentences and tables, for text, Markdown and LaTeX alike.
 
-use crate::analysis::response::{ClosestEdge, Gap, GapReason, Response};
+use crate::analysis::response::{ClosestEdge, Gap, GapReason, Response, Threshold};
 
 use super::super::table::columns::Glyphs;
-use super::super::table::human;
 use super::super::table::layout::Ink;
 use super::super::table::provenance::plain;
 use super::super::table::scene;
 use super::super::table::sheet::Sheet;
 use super::super::table::words::{INCOMPLETE, UNDECIDED, proof};
+use super::super::table::{Form, Page, human};
 use super::paper::Part;
-use super::words::{gap, kind, listed, setting, share, unit, with_unit};
-use super::{One, Responses, meaning, sheets, summary};
+use super::plot::{self, Quantity, View};
+use super::words::{gap, kind, listed, name, unit};
+use super::{One, Responses, glyphs, meaning, sheets, summary};
 
 /// Everything, scenario by scenario, and the meaning of words.
-pub(super) fn parts<'r>(responses: &Responses<'r>, glyphs: Glyphs) -> Vec<Part<'r>> {
+pub(super) fn parts<'r>(responses: &Responses<'r>, form: Form, page: Page) -> Vec<Part<'r>> {
+    let glyphs = glyphs(form, page);
     let mut parts = Vec::new();
     for (scene, one) in responses.each() {
         match one {
-            Some(one) => parts.extend(scenario(&one, glyphs)),
+            Some(one) => parts.extend(scenario(&one, glyphs, &drawings(&one, form, page))),
             None => parts.push(Part::Failed(scene)),
         }
     }
@@ -36,23 +38,44 @@ const MEANINGS: [(&str, &str); 3] = [
     ("soft, hard", "what comes instead is near and stable, or the community jumps to a state elsewhere."),
 ];
 
-fn scenario<'r>(one: &One<'r>, glyphs: Glyphs) -> Vec<Part<'r>> {
+/// Rows of a drawing.
+const ROWS: usize = 16;
+/// Columns of the widest; more only pull curves apart.
+const WIDEST: usize = 100;
+/// Species of whom there is a drawing.
+const DRAWN: usize = 2;
+
+/// The curves of the species along the sketch's axes, or of the first ones.
+fn drawings(one: &One<'_>, form: Form, page: Page) -> Vec<String> {
+    if form != Form::Text {
+        return Vec::new();
+    }
+    let model = one.table.model;
+    let all = model.sketch.map_or_else(|| (0..model.species.len()).collect(), |axes| axes.map(|id| id.0).to_vec());
+    let page = Page { width: page.width.min(WIDEST), ..page };
+    let drawn = all.into_iter().take(DRAWN).map(|species| {
+        let quantity = Quantity::Abundance(species);
+        plot::text(&View { model, response: &one.along.response, quantity, rule: None, chosen: None }, ROWS, &page)
+    });
+    drawn.collect()
+}
+
+fn scenario<'r>(one: &One<'r>, glyphs: Glyphs, drawings: &[String]) -> Vec<Part<'r>> {
     let along = one.along;
     let control = &along.response.control;
     let model = one.table.model;
-    let range = format!(
-        "{} to {}, now {}",
-        setting(model, control.parameter, control.from).trim_end_matches(unit(model, control.parameter)).trim_end(),
-        with_unit(control.to, unit(model, control.parameter)),
-        human(control.present)
-    );
+    let [from, to, present] = [control.from, control.to, control.present].map(plain);
+    let unit = unit(model, control.parameter);
+    let to = if unit.is_empty() { to } else { format!("{to} {unit}") };
+    let range = format!("{} from {from} to {to}, now {present}", name(model, control.parameter));
     let mut parts = vec![
         Part::Scenario(one.scene),
         Part::Said(format!("{}; {range}.", scene::changes(one.table, one.scene, one.solved, plain))),
-        Part::Said(summary(&one.setting(), &along.advice, &along.margins, along.focus)),
+        Part::Said(summary(&one.setting(), &along.advice, along.focus, along.band.as_ref())),
         complete(&along.response, one),
     ];
     parts.extend(undefined(one));
+    parts.extend(drawings.iter().map(|drawing| Part::Drawing(drawing.lines().map(str::to_owned).collect())));
     parts.extend(thresholds(one));
     parts.extend(table("Branches (numerical), where no abundance is negative", sheets::branches(one, glyphs)));
     parts.extend(table(
@@ -70,16 +93,15 @@ fn table<'p>(heading: &str, sheet: Sheet) -> Vec<Part<'p>> {
 
 fn thresholds<'p>(one: &One<'p>) -> Vec<Part<'p>> {
     let all = &one.along.response.thresholds;
-    let shown: Vec<_> = all.iter().filter(|threshold| sheets::is_shown(threshold)).collect();
+    let shown: Vec<_> = all.iter().enumerate().filter(|(_, threshold)| sheets::is_shown(threshold)).collect();
     if all.is_empty() {
         return vec![Part::Said(format!("No threshold was found in the range ({}).", proof(false)))];
     }
     let mut parts = table("Thresholds (numerical)", sheets::thresholds(one));
-    parts.extend(
-        shown
-            .iter()
-            .map(|threshold| Part::Said(format!("{}: {}.", kind(threshold.kind), meaning(&one.setting(), threshold)))),
-    );
+    let said = |(place, threshold): &(usize, &Threshold)| {
+        format!("{} {}: {}.", plot::mark(*place), kind(threshold.kind), meaning(&one.setting(), threshold))
+    };
+    parts.extend(shown.iter().map(|one| Part::Said(said(one))));
     let hidden = all.len() - shown.len();
     if hidden > 0 {
         parts.push(Part::Said(format!(
@@ -105,11 +127,11 @@ fn closest(one: &One<'_>, edge: &ClosestEdge, starts: usize) -> String {
         starts => format!("{starts} starts led there"),
     };
     format!(
-        "With all of them moved together the nearest loss found is a {} at {}{outside}: {} of a range away ({}; {led}, and \
-         there may be a nearer one).",
+        "With all of them moved together the nearest loss found is a {} at {}{outside}: a move of {}, each parameter in \
+         widths of its range ({}; {led}, and there may be a nearer one).",
         kind(edge.kind),
         sheets::values(one, &edge.values),
-        share(edge.distance),
+        human(edge.distance),
         proof(false)
     )
 }
@@ -124,7 +146,7 @@ fn complete<'p>(response: &Response, one: &One<'_>) -> Part<'p> {
         1 => "1 value".to_owned(),
         count => format!("{count} values"),
     };
-    let found = format!("searched in full at {stations} of {}", super::words::name(one.table.model, control.parameter));
+    let found = format!("searched in full at {stations} of {}", name(one.table.model, control.parameter));
     if super::is_complete(response) {
         let said = format!("no equilibrium in the search box is missing anywhere in the range; {found}.");
         return Part::Marked(proof(true), Ink::Proved, said);

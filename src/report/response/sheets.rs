@@ -6,10 +6,11 @@ use crate::model::ParameterId;
 
 use super::super::kinds;
 use super::super::table::columns::{Glyphs, Unit};
-use super::super::table::human;
 use super::super::table::layout::{Align, Cell, Head, Ink};
 use super::super::table::sheet::Sheet;
+use super::super::table::{Table, human};
 use super::One;
+use super::plot::mark;
 use super::segments::{Segment, segments};
 use super::words::{community, criticality, kind, name, share, taking, taking_unit, told_apart, unit};
 
@@ -21,19 +22,18 @@ fn control_head(one: &One<'_>) -> Head {
     head(name(one.table.model, parameter), unit(one.table.model, parameter))
 }
 
-fn head(title: &str, unit: &str) -> Head {
+pub(super) fn head(title: &str, unit: &str) -> Head {
     Head { unit: unit.to_owned(), ..Head::new(title, Align::Point) }
 }
 
 /// A column for each abundance, where they are few enough.
-fn state_heads(one: &One<'_>) -> Vec<Head> {
-    let species = one.table.model.species.iter().enumerate();
-    let all: Vec<Head> =
-        species.map(|(i, species)| head(&species.symbol, &Unit::State.of(one.table, Some(i)))).collect();
+pub(super) fn state_heads(table: &Table<'_>) -> Vec<Head> {
+    let species = table.model.species.iter().enumerate();
+    let all: Vec<Head> = species.map(|(i, species)| head(&species.symbol, &Unit::State.of(table, Some(i)))).collect();
     if all.len() > MOST_SPECIES { Vec::new() } else { all }
 }
 
-fn state_cells(state: &[f64]) -> Vec<Cell> {
+pub(super) fn state_cells(state: &[f64]) -> Vec<Cell> {
     if state.len() > MOST_SPECIES { Vec::new() } else { state.iter().map(|&x| Cell::new(human(x))).collect() }
 }
 
@@ -44,14 +44,16 @@ pub(super) fn is_shown(threshold: &Threshold) -> bool {
 
 /// The thresholds that concern states that there can be.
 pub(super) fn thresholds(one: &One<'_>) -> Sheet {
-    let shown: Vec<&Threshold> = one.along.response.thresholds.iter().filter(|threshold| is_shown(threshold)).collect();
-    let at = told_apart(&shown.iter().map(|threshold| threshold.at).collect::<Vec<_>>());
+    let all = one.along.response.thresholds.iter().enumerate();
+    let shown: Vec<(usize, &Threshold)> = all.filter(|(_, threshold)| is_shown(threshold)).collect();
+    let at = told_apart(&shown.iter().map(|(_, threshold)| threshold.at).collect::<Vec<_>>());
     let eigenvalues = if one.table.is_map() { String::new() } else { Unit::PerTime.of(one.table, None) };
     let leading = Head { unit: eigenvalues, ..Head::new("leading eigenvalues", Align::Left) };
-    let heads = [vec![Head::new("threshold", Align::Left), control_head(one)], state_heads(one)].concat();
+    let heads = [vec![Head::new("threshold", Align::Left), control_head(one)], state_heads(one.table)].concat();
     let heads = [heads, vec![leading, Head::new("soft or hard", Align::Left)]].concat();
-    let row = |(threshold, at): (&&Threshold, String)| {
-        let first = vec![Cell::new(kind(threshold.kind)), Cell::new(at)];
+    let row = |((place, threshold), at): (&(usize, &Threshold), String)| {
+        // The sign that marks it in the drawing.
+        let first = vec![Cell::new(format!("{} {}", mark(*place), kind(threshold.kind))), Cell::new(at)];
         let last = vec![Cell::new(spectrum(threshold)), Cell::new(threshold.criticality.map_or("", criticality))];
         [first, state_cells(&threshold.state), last].concat()
     };
@@ -99,7 +101,8 @@ pub(super) fn branches(one: &One<'_>, glyphs: Glyphs) -> Sheet {
     heads.extend([Head::new("with", Align::Left), Head::new("type", Align::Left)]);
     heads.extend(ends);
     let rows = one.along.response.branches.iter().enumerate().flat_map(|(place, branch)| {
-        let parts = segments(branch).into_iter().filter(|part| part.feasible);
+        let has_length = |part: &Segment| part.ends[0] != part.ends[1] || branch.points.len() == 1;
+        let parts = segments(branch).into_iter().filter(move |part| part.feasible && has_length(part));
         parts.map(move |part| segment(one, place, branch, &part, glyphs)).collect::<Vec<_>>()
     });
     Sheet { heads, rows: rows.collect() }
@@ -132,7 +135,7 @@ pub(super) fn look(kind: Option<Kind>, glyphs: Glyphs) -> String {
 pub(super) fn yields(one: &One<'_>) -> Sheet {
     let mut heads = vec![Head::new("largest", Align::Left), head("amount", ""), Head::new("unit", Align::Left)];
     heads.push(control_head(one));
-    heads.extend(state_heads(one));
+    heads.extend(state_heads(one.table));
     heads.extend([Head::new("attained", Align::Left), Head::new("nearest loss", Align::Left)]);
     Sheet { heads, rows: one.along.advice.best.iter().map(|best| best_yield(one, best)).collect() }
 }

@@ -1,7 +1,8 @@
 //! The response of one scenario in a few sentences: how far today's state holds, how it is lost, what it yields.
 
-use crate::analysis::response::{Advice, Band, BestYield, Edge, Margins, OpenAccess, Removal, Threshold};
+use crate::analysis::response::{Advice, Band, BestYield, Edge, OpenAccess, Removal, Threshold};
 
+use super::super::table::provenance::plain;
 use super::super::table::words::proof;
 use super::meaning::{Setting, meaning};
 use super::words::{community, kind, name, setting, share, taking, taking_unit, unit, with_unit};
@@ -10,8 +11,9 @@ use super::words::{community, kind, name, setting, share, taking, taking_unit, u
 const NEAR: f64 = 0.1;
 
 /// The sentences, in one text.
-pub fn summary(at: &Setting<'_>, advice: &Advice, margins: &Margins, focus: Option<usize>) -> String {
-    let band = margins.bands.iter().find(|band| band.parameter == at.response.control.parameter);
+///
+/// `focus` is the state that it is about, by its place in the list, `band` where that persists and is stable.
+pub fn summary(at: &Setting<'_>, advice: &Advice, focus: Option<usize>, band: Option<&Band>) -> String {
     let mut all = match (focus, band) {
         (Some(place), Some(band)) => held(at, place, band),
         (Some(place), None) => vec![format!("The state at the present value is {}.", state(at, place))],
@@ -31,7 +33,7 @@ fn is_spoken_of(at: &Setting<'_>, best: &BestYield) -> bool {
 }
 
 fn present(at: &Setting<'_>) -> String {
-    setting(at.model, at.response.control.parameter, at.response.control.present)
+    format!("{} = {}", name(at.model, at.response.control.parameter), plain(at.response.control.present))
 }
 
 /// An equilibrium by its name, and who is there.
@@ -71,7 +73,7 @@ fn lost(at: &Setting<'_>, band: &Band, threshold: &Threshold, amount: f64, end: 
     let distance = if band.present == 0.0 {
         format!("{} {side} the present 0", with_unit(amount, unit(at.model, band.parameter)))
     } else {
-        format!("{} {side} the present {}", share(amount / band.present), with_unit(band.present, ""))
+        format!("{} {side} the present {}", share(amount / band.present), plain(band.present))
     };
     format!("Nearest loss, {distance}: {} ({}).", meaning(at, threshold), kind(threshold.kind))
 }
@@ -115,7 +117,8 @@ fn removed(at: &Setting<'_>, removal: &Removal) -> String {
     match removal.at {
         Some(x) => {
             let here = setting(at.model, at.response.control.parameter, x);
-            format!("No stable state has {species} from {here} on.")
+            let open = if removal.settles_without { "" } else { "; in cycles it may live on" };
+            format!("No stable state has {species} from {here} on{open}.")
         }
         None => format!("At no value in the range are all stable states without {species}."),
     }

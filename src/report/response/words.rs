@@ -63,10 +63,10 @@ pub fn name(model: &Model, parameter: ParameterId) -> &str {
     model.parameters.get(parameter.0).map_or("", |parameter| &parameter.name)
 }
 
-/// A parameter's unit; empty where it has none.
+/// A parameter's unit; empty where it has none, or is a pure number.
 pub fn unit(model: &Model, parameter: ParameterId) -> &str {
     let unit = model.parameters.get(parameter.0).and_then(|parameter| parameter.unit.as_ref());
-    unit.map(|unit| unit.value.as_str()).filter(|unit| *unit != "1").unwrap_or_default()
+    unit.map(|unit| unit.value.as_str()).filter(|unit| *unit != "1").unwrap_or("")
 }
 
 /// A value of a parameter with its name and unit: `E = 1.830`, `nets = 13.33 net`.
