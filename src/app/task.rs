@@ -7,9 +7,10 @@ use super::{Read, Source};
 use crate::analysis::field::{Scale, Slice, Window};
 use crate::analysis::passage::Passage;
 use crate::analysis::paths::Path;
-use crate::analysis::response::{Control, Response};
+use crate::analysis::response::Control;
 use crate::model::ParameterId;
 use crate::report::course::Course;
+use crate::report::response::Along;
 use crate::report::sketch::{Picture, Plot};
 use crate::report::table::{Names, Scene, Solved};
 
@@ -178,7 +179,7 @@ pub enum Answer {
     /// Of following after a knock; nothing where the scenario has no equations.
     Ran(Option<Arc<Course>>),
     /// Of following over the range of a control; nothing where the scenario has no equations.
-    Responded(Option<Arc<Response>>),
+    Responded(Option<Arc<Along>>),
     /// Of searching at another value, with the world that has it; nothing where the scenario has no equations.
     Cut(Option<(Arc<World>, Arc<Scene>)>),
 }

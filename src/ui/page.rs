@@ -74,7 +74,8 @@ pub(super) fn status(app: &App, page: &mut Page<'_>, area: Area) {
 /// How far branches are followed.
 fn following(job: &Job) -> String {
     let known = match &job.partly {
-        Some(Answer::Responded(Some(response))) => {
+        Some(Answer::Responded(Some(along))) => {
+            let response = &along.response;
             let count =
                 |count: usize, one: &str, many: &str| format!("{count} {}", if count == 1 { one } else { many });
             let branches = count(response.branches.len(), "branch", "branches");

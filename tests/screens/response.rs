@@ -216,7 +216,7 @@ fn following(bench: &Bench) -> Option<(JobId, Task)> {
 #[test]
 fn branches_fill_in_as_they_are_followed_and_can_be_stopped() {
     let mut whole = quota();
-    let response = restpoint::app::response::known(&whole.app, study(&whole)).unwrap().0.clone();
+    let response = restpoint::app::response::along(&whole.app, study(&whole)).unwrap().0.clone();
     whole.press("e");
     let mut bench = Bench::of(QUOTA);
     bench.hold();

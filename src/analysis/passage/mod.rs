@@ -14,7 +14,7 @@ mod agree;
 mod curve;
 mod face;
 mod identity;
-mod locate;
+pub(in crate::analysis) mod locate;
 mod walk;
 
 use std::collections::HashMap;

@@ -8,22 +8,32 @@
 mod advice;
 mod bands;
 mod closest;
+mod curve;
 mod defining;
 pub mod equations;
+mod events;
 mod footing;
 pub mod locate;
 mod margins;
 mod open_access;
+mod picture;
+mod piece;
 mod ray;
+mod registry;
 mod removal;
+mod respond;
 mod stretches;
 mod surface;
+mod switch;
+mod types;
+mod walk;
 mod watch;
 mod yields;
 
 pub use advice::advise;
 pub use bands::band;
 pub use margins::margins;
+pub use respond::respond;
 
 use nalgebra::Complex;
 

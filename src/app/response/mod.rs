@@ -21,6 +21,7 @@ use super::{App, Study};
 use crate::analysis::field::{LINEAR, Window, around};
 use crate::analysis::response::{Control, Response};
 use crate::model::{Parameter, ParameterId};
+use crate::report::response::Along;
 use crate::report::response::plot::{Quantity, View, quantities};
 use crate::report::sketch::{self, Plot};
 
@@ -104,14 +105,19 @@ pub fn at_rule(app: &App, study: &Study) -> Option<Task> {
 }
 
 /// The response as far as it is known, and whether that is all that is to come.
-pub fn known<'a>(app: &'a App, study: &Study) -> Option<(&'a Arc<Response>, bool)> {
+pub fn known<'a>(app: &'a App, study: &Study) -> Option<(&'a Response, bool)> {
+    along(app, study).map(|(along, is_whole)| (&along.response, is_whole))
+}
+
+/// The same with what it means for catches and margins, which comes last.
+pub fn along<'a>(app: &'a App, study: &Study) -> Option<(&'a Arc<Along>, bool)> {
     let task = respond(app, study)?;
     let of = |answer: Option<&'a Answer>| match answer? {
-        Answer::Responded(response) => response.as_ref(),
+        Answer::Responded(along) => along.as_ref(),
         _ => None,
     };
-    let whole = of(app.desk.known(&task)).map(|response| (response, true));
-    whole.or_else(|| of(app.desk.partly(&task)).map(|response| (response, false)))
+    let whole = of(app.desk.known(&task)).map(|along| (along, true));
+    whole.or_else(|| of(app.desk.partly(&task)).map(|along| (along, false)))
 }
 
 /// What is drawn upwards.

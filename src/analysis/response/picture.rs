@@ -1,0 +1,414 @@
+//! The picture so far: branches that were followed, thresholds on them, and starts that are still to be followed.
+//!
+//! A branch is followed once: a start that lies on one that is known is dropped. A threshold that is come upon on several
+//! branches is one, and its arms are all of theirs.
+
+use std::collections::VecDeque;
+use std::rc::Rc;
+
+use nalgebra::Complex;
+
+use super::curve::{Curve, Sample};
+use super::equations::Equations;
+use super::events::Change;
+use super::piece::{Piece, Pieces};
+use super::walk::{End, Event, Ground, Node, Walk, distance};
+use super::{Arm, Branch, Control, Ending, Point, Response, Threshold, ThresholdKind};
+use crate::model::SpeciesId;
+
+/// Branches and starts that are followed at most.
+const MOST_BRANCHES: usize = 400;
+/// Pieces that one branch runs through at most, each way.
+const MOST_LEGS: usize = 60;
+/// Thresholds nearer to each other than these are one: share of the range, and of each abundance.
+const SAME: [f64; 2] = [1e-6, 1e-4];
+/// An abundance this share of the box below 0, or beyond its sides, is there by rounding.
+const ROUNDING: f64 = 1e-9;
+
+/// Where a branch is to be followed from.
+#[derive(Clone, Debug)]
+pub(super) struct Start {
+    /// Who is present.
+    pub(super) present: Vec<bool>,
+    /// The state of all species.
+    pub(super) state: Vec<f64>,
+    /// The control.
+    pub(super) control: f64,
+    /// Of a branch that crosses another there: the direction of that one, over all species and the control.
+    pub(super) across: Option<Vec<f64>>,
+}
+
+pub(super) struct Picture<'e> {
+    pub(super) equations: &'e mut Equations,
+    pub(super) pieces: Pieces,
+    pub(super) control: Control,
+    pub(super) branches: Vec<Followed>,
+    pub(super) thresholds: Vec<Threshold>,
+    pub(super) starts: VecDeque<Start>,
+    pub(super) stop: &'e dyn Fn() -> bool,
+    values: Rc<[f64]>,
+}
+
+/// A branch that was followed.
+#[derive(Clone, Debug)]
+pub(super) struct Followed {
+    pub(super) present: Vec<bool>,
+    pub(super) points: Vec<Point>,
+    pub(super) ends: [Ending; 2],
+    /// The largest that each abundance was.
+    pub(super) peaks: Vec<f64>,
+}
+
+impl<'e> Picture<'e> {
+    pub(super) fn new(equations: &'e mut Equations, control: &Control, stop: &'e dyn Fn() -> bool) -> Self {
+        let values: Rc<[f64]> = equations.values.clone().into();
+        Self {
+            equations,
+            pieces: Pieces::default(),
+            control: *control,
+            branches: Vec::new(),
+            thresholds: Vec::new(),
+            starts: VecDeque::new(),
+            stop,
+            values,
+        }
+    }
+
+    /// Follows everything that is waiting, and what it leads to.
+    pub(super) fn follow_all(&mut self) {
+        let mut followed = 0;
+        while let Some(start) = self.starts.pop_front() {
+            followed += 1;
+            if (self.stop)() || self.branches.len() >= MOST_BRANCHES || followed > 8 * MOST_BRANCHES {
+                return;
+            }
+            self.follow(&start);
+        }
+    }
+
+    /// Follows the branch through a state both ways, unless it is known; whether it now is.
+    pub(super) fn follow(&mut self, start: &Start) -> bool {
+        let Some(present) = self.pieces.moving(self.equations, &start.present) else { return false };
+        if start.across.is_none() && self.passes(&present, &start.state, start.control) {
+            return true;
+        }
+        let Some((piece, sample)) = self.set_out(start, &present) else { return false };
+        if start.across.is_some() && self.passes(&present, &self.whole(&piece, &sample.at), self.control_of(&sample)) {
+            return true;
+        }
+        let (mut points, end) = self.go(piece.clone(), sample.clone(), Some(sample.clone()));
+        let mut ends = [end, end];
+        let mut all = Vec::new();
+        if end != Ending::Closed {
+            let mut back = sample.clone();
+            back.direction.iter_mut().for_each(|part| *part = -*part);
+            back.orientation = -back.orientation;
+            let (before, end) = self.go(piece.clone(), back, None);
+            ends[0] = end;
+            all = before;
+            all.reverse();
+        }
+        let first = self.point(&piece, &sample, None);
+        all.push(first.clone());
+        all.append(&mut points);
+        if end == Ending::Closed {
+            all.push(first);
+        }
+        let n = self.equations.species;
+        let peaks = (0..n).map(|i| all.iter().fold(0.0f64, |most, point| most.max(point.state[i].abs()))).collect();
+        self.branches.push(Followed { present, points: all, ends, peaks });
+        true
+    }
+
+    fn width(&self) -> f64 {
+        self.control.to - self.control.from
+    }
+
+    fn control_of(&self, sample: &Sample) -> f64 {
+        sample.at[sample.at.len() - 1]
+    }
+
+    fn is_map(&self) -> bool {
+        self.equations.step.is_some()
+    }
+
+    /// The state of all species at a point of a piece.
+    fn whole(&self, piece: &Piece, at: &[f64]) -> Vec<f64> {
+        let mut state = vec![0.0; self.equations.species];
+        piece.moving.iter().zip(at).for_each(|(&i, &x)| state[i] = x);
+        state
+    }
+
+    fn sides_of(&self, piece: &Piece) -> Vec<[f64; 2]> {
+        piece.moving.iter().map(|&i| self.equations.sides[i]).collect()
+    }
+
+    /// The piece and the point that a branch is followed from.
+    fn set_out(&mut self, start: &Start, present: &[bool]) -> Option<(Rc<Piece>, Sample)> {
+        // Beside a kink at absence the side is that of those who are there.
+        let inside = |(i, &x): (usize, &f64)| {
+            if x == 0.0 && present[i] { 1e-9 * self.equations.sides[i][1].abs() } else { x }
+        };
+        let beside: Vec<f64> = start.state.iter().enumerate().map(inside).collect();
+        let piece = self.pieces.at(self.equations, present, &beside, start.control)?;
+        let at: Vec<f64> = piece.moving.iter().map(|&i| start.state[i]).chain([start.control]).collect();
+        let values = self.values.clone();
+        let mut curve = Curve::new(&piece, &values, self.width(), self.is_map());
+        for (place, &i) in piece.moving.iter().enumerate() {
+            curve.scale[place] = start.state[i].abs().max(1e-3 * self.equations.sides[i][1].abs());
+        }
+        let sample = match &start.across {
+            None => {
+                let sample = curve.settled(&at)?;
+                (distance(&sample.at, &at, &curve.scale) < 1e-2).then_some(sample)?
+            }
+            Some(direction) => {
+                let known: Vec<f64> =
+                    piece.moving.iter().map(|&i| direction[i]).chain([direction[self.equations.species]]).collect();
+                super::switch::across(&mut curve, &at, &known)?
+            }
+        };
+        Some((piece, sample))
+    }
+
+    /// Goes along a branch from a point of it, over kinks, to its end.
+    fn go(&mut self, piece: Rc<Piece>, start: Sample, mut home: Option<Sample>) -> (Vec<Point>, Ending) {
+        let mut piece = piece;
+        let mut start = start;
+        let mut points = Vec::new();
+        let values = self.values.clone();
+        for _ in 0..MOST_LEGS {
+            let sides = self.sides_of(&piece);
+            let current = piece.clone();
+            let mut curve = Curve::new(&current, &values, self.width(), self.is_map());
+            let ground = Ground { sides: &sides, range: [self.control.from, self.control.to], stop: self.stop };
+            let (nodes, end) = Walk::new(&mut curve, ground, start, home.take()).run();
+            let last = nodes.last().map(|node| node.sample.clone());
+            let k = match end {
+                End::Kink(k) => Some(k),
+                _ => None,
+            };
+            let beyond = match (k, &last) {
+                (Some(k), Some(last)) => super::switch::over_kink(self, &current, k, last),
+                _ => None,
+            };
+            let is_smooth = beyond.as_ref().is_some_and(|(next, _)| next.is_like(&current));
+            self.keep(&current, nodes, is_smooth, beyond.as_ref(), &mut points);
+            if k.is_none() {
+                return (points, ending(end));
+            }
+            let at_kink = points.last().and_then(|point: &Point| point.threshold);
+            match beyond {
+                Some((next, sample)) => (piece, start) = (next, sample),
+                None => return (points, at_kink.map_or(Ending::Lost, Ending::Threshold)),
+            }
+        }
+        (points, Ending::Lost)
+    }
+
+    /// Points and thresholds of a leg.
+    fn keep(
+        &mut self,
+        piece: &Rc<Piece>,
+        nodes: Vec<Node>,
+        is_smooth: bool,
+        beyond: Option<&(Rc<Piece>, Sample)>,
+        points: &mut Vec<Point>,
+    ) {
+        for node in nodes {
+            let threshold = node.event.as_ref().and_then(|event| {
+                if is_smooth && matches!(event.changes[..], [Change::Kink(_)]) {
+                    return None;
+                }
+                self.note(piece, &node.sample, event, beyond)
+            });
+            points.push(self.point(piece, &node.sample, threshold));
+        }
+    }
+
+    /// A point as the result has it.
+    fn point(&self, piece: &Piece, sample: &Sample, threshold: Option<usize>) -> Point {
+        let state = self.whole(piece, &sample.at);
+        let taking =
+            |place: &Option<usize>| place.map(|place| sample.beside[place]).filter(|amount| amount.is_finite());
+        Point {
+            at: self.control_of(sample),
+            kind: sample.typed.light.map(|light| light.kind),
+            stable: sample.typed.light.and_then(|light| light.stable),
+            leading: sample.typed.leading,
+            feasible: self.is_feasible(&state),
+            takings: piece.takings.iter().map(taking).collect(),
+            threshold,
+            state,
+        }
+    }
+
+    pub(super) fn is_feasible(&self, state: &[f64]) -> bool {
+        state.iter().zip(&self.equations.sides).all(|(&x, side)| {
+            let room = ROUNDING * side[1].abs();
+            x >= side[0].min(0.0).max(-room) - room && x >= side[0] - room && x <= side[1] + room
+        })
+    }
+
+    /// Enters what happens at a point of a branch, and what is to be followed from there.
+    fn note(
+        &mut self,
+        piece: &Rc<Piece>,
+        sample: &Sample,
+        event: &Event,
+        beyond: Option<&(Rc<Piece>, Sample)>,
+    ) -> Option<usize> {
+        let mut state = self.whole(piece, &sample.at);
+        let meaning = super::switch::Meaning::of(self, piece, event, &state);
+        for &i in &meaning.vanish {
+            state[i] = 0.0;
+        }
+        if !self.is_feasible(&state) {
+            return None;
+        }
+        let mut direction = vec![0.0; self.equations.species + 1];
+        piece.moving.iter().zip(&sample.direction).for_each(|(&i, &part)| direction[i] = part);
+        direction[self.equations.species] = sample.direction[piece.moving.len()];
+        for (present, is_across) in meaning.leads_to {
+            let across = is_across.then(|| direction.clone());
+            self.starts.push_back(Start { present, state: state.clone(), control: self.control_of(sample), across });
+        }
+        let kink = event.changes.iter().find_map(|change| match change {
+            Change::Kink(k) => Some(*k),
+            _ => None,
+        });
+        let other_side = kink.and(beyond).map(|(next, start)| self.eigenvalues(next, start));
+        let found = Threshold {
+            kind: meaning.kind,
+            at: self.control_of(sample),
+            state,
+            eigenvalues: event.eigenvalues.clone(),
+            other_side,
+            criticality: None,
+            species: meaning.species.map(SpeciesId),
+            arms: Vec::new(),
+            kink: None,
+            error: event.error,
+        };
+        Some(self.merged(found))
+    }
+
+    fn eigenvalues(&self, piece: &Piece, sample: &Sample) -> Vec<Complex<f64>> {
+        let values = self.values.clone();
+        let mut curve = Curve::new(piece, &values, self.width(), self.is_map());
+        if !curve.evaluate(&sample.at) {
+            return Vec::new();
+        }
+        curve.look(&mut sample.clone());
+        curve.eigenvalues().to_vec()
+    }
+
+    /// The place of a threshold among those known, itself new or met before.
+    fn merged(&mut self, found: Threshold) -> usize {
+        let width = self.width();
+        let sides = &self.equations.sides;
+        let is_same = |known: &Threshold| {
+            let near = |i: usize| {
+                let room = SAME[1] * known.state[i].abs().max(1e-3 * sides[i][1].abs());
+                (known.state[i] - found.state[i]).abs() <= room
+            };
+            (known.at - found.at).abs() <= SAME[0] * width && (0..found.state.len()).all(near)
+        };
+        let Some(place) = self.thresholds.iter().position(is_same) else {
+            self.thresholds.push(found);
+            return self.thresholds.len() - 1;
+        };
+        let known = &mut self.thresholds[place];
+        known.kind = together(known.kind, found.kind);
+        known.species = known.species.or(found.species);
+        place
+    }
+
+    /// The picture as a result.
+    pub(super) fn response(&mut self, equilibria: &[Vec<f64>]) -> Response {
+        let takings = self.equations.takings.clone();
+        let mut order: Vec<usize> = (0..self.branches.len()).collect();
+        let key = |b: &usize| {
+            let present = &self.branches[*b].present;
+            (present.iter().filter(|&&is| is).count(), present.iter().map(|&is| !is).collect::<Vec<_>>())
+        };
+        order.sort_by_key(key);
+        let mut by_value: Vec<usize> = (0..self.thresholds.len()).collect();
+        by_value.sort_by(|&a, &b| self.thresholds[a].at.total_cmp(&self.thresholds[b].at));
+        let mut place = vec![0; by_value.len()];
+        by_value.iter().enumerate().for_each(|(new, &old)| place[old] = new);
+        let mut thresholds: Vec<Threshold> = by_value.iter().map(|&old| self.thresholds[old].clone()).collect();
+        let mut branches = Vec::with_capacity(order.len());
+        for (number, &b) in order.iter().enumerate() {
+            let followed = &self.branches[b];
+            let mut points = followed.points.clone();
+            points.iter_mut().for_each(|point| point.threshold = point.threshold.map(|old| place[old]));
+            add_arms(&mut thresholds, number, &followed.present, &points);
+            let ends = followed.ends.map(|end| match end {
+                Ending::Threshold(old) => Ending::Threshold(place[old]),
+                other => other,
+            });
+            branches.push(Branch { present: followed.present.clone(), points, ends, equilibria: Vec::new() });
+        }
+        for (which, state) in equilibria.iter().enumerate() {
+            if let Some(b) = self.branch_through(state, self.control.present)
+                && let Some(number) = order.iter().position(|&old| old == b)
+            {
+                branches[number].equilibria.push(which);
+            }
+        }
+        Response {
+            control: self.control,
+            takings,
+            branches,
+            thresholds,
+            stations: Vec::new(),
+            gaps: Vec::new(),
+            undefined: Vec::new(),
+        }
+    }
+}
+
+/// The kind of a threshold that was met twice.
+fn together(known: ThresholdKind, found: ThresholdKind) -> ThresholdKind {
+    use ThresholdKind::{Exit, Fold, Pitchfork, Transcritical};
+    match (known, found) {
+        (a, b) if a == b => a,
+        (Pitchfork, _) | (_, Pitchfork) | (Transcritical, Fold) | (Fold, Transcritical) => Pitchfork,
+        (Transcritical, _) | (_, Transcritical) => Transcritical,
+        (Exit, other) => other,
+        (known, _) => known,
+    }
+}
+
+fn ending(end: End) -> Ending {
+    match end {
+        End::Range => Ending::Range,
+        End::Closed => Ending::Closed,
+        End::Undefined => Ending::Undefined,
+        End::Far => Ending::Far,
+        End::Stopped => Ending::Stopped,
+        End::Lost | End::Kink(_) => Ending::Lost,
+    }
+}
+
+/// What of a branch begins at its thresholds.
+fn add_arms(thresholds: &mut [Threshold], branch: usize, present: &[bool], points: &[Point]) {
+    for (place, point) in points.iter().enumerate() {
+        let Some(threshold) = point.threshold else { continue };
+        let before = place.checked_sub(1).and_then(|before| points.get(before));
+        for beside in [before, points.get(place + 1)].into_iter().flatten() {
+            let arm = Arm {
+                branch: Some(branch),
+                above: beside.at > point.at,
+                kind: beside.kind,
+                stable: beside.stable,
+                feasible: beside.feasible,
+                present: present.to_vec(),
+            };
+            if !thresholds[threshold].arms.contains(&arm) {
+                thresholds[threshold].arms.push(arm);
+            }
+        }
+    }
+}
