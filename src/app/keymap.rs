@@ -170,6 +170,8 @@ pub const BINDINGS: &[Binding] = &[
     bind(&[Key::Char('0')], Action::Fit, "put the rule back to the present value", &[RESPONSE]),
     bind(&[Key::Tab], Action::Other, "vary another control", &[RESPONSE]),
     bind(&[Key::Char('y')], Action::Species(Axis::Upwards), "draw another quantity upwards", &[RESPONSE]),
+    bind(&[Key::Char(')')], Action::Numbers(Step::On), "see more of the numbers", &[RESPONSE]),
+    bind(&[Key::Char('(')], Action::Numbers(Step::Back), "see the numbers before", &[RESPONSE]),
     bind(&[Key::Char('t')], Action::TakeOver, "try the value at the rule", &[RESPONSE]),
     bind(&[Key::Char('}')], Action::Scenario(Step::On), "go to the scenario after", &[RESPONSE]),
     bind(&[Key::Char('{')], Action::Scenario(Step::Back), "go to the scenario before", &[RESPONSE]),

@@ -77,7 +77,7 @@ fn here(app: &App, study: &Study, all: &[State], page: &mut Page<'_>, parts: &Pa
     for (place, one) in species.iter().take(count).enumerate() {
         right(page, list, [0, width], place, &one.symbol, Ink::Strong);
     }
-    let chosen = place(study, all);
+    let chosen = place(app, study, all);
     let visible = usize::from(list.rows.saturating_sub(1));
     let from = study.responding.from;
     for (row, (place, state)) in all.iter().enumerate().skip(from).take(visible).enumerate() {
@@ -146,7 +146,7 @@ fn numbers(app: &App, study: &Study, state: &State, page: &mut Page<'_>, area: A
         let case = Case { model: &world.original.model, bounds: &world.prepared.bounds, scene, solved, ids: &ids };
         // Type and proof are in the list above.
         let from = case.facts(place, false).iter().take_while(|fact| SAID.contains(&fact.label.as_str())).count();
-        facts(&case, place, from, page, area);
+        facts(&case, place, from + study.facts_from, page, area);
         return;
     }
     let Some((response, _)) = known(app, study) else { return };
@@ -232,7 +232,7 @@ fn sketch(app: &App, study: &Study, page: &mut Page<'_>, parts: &Parts) {
         return;
     };
     let all = states(app, study);
-    let chosen = place(study, &all).and_then(|place| all.get(place)).and_then(|state| state.found);
+    let chosen = place(app, study, &all).and_then(|place| all.get(place)).and_then(|state| state.found);
     let mut named: Vec<(usize, String)> = all.into_iter().filter_map(|one| Some((one.found?, one.name))).collect();
     named.sort_by_key(|(place, _)| *place);
     let ids = named.into_iter().map(|(_, name)| name).collect();

@@ -4,6 +4,7 @@ use std::sync::Arc;
 
 use super::{Pick, at_rule, known, rule};
 use crate::analysis::linearise::Kind;
+use crate::analysis::response::Response;
 use crate::app::study::World;
 use crate::app::task::Answer;
 use crate::app::{App, Study};
@@ -77,12 +78,12 @@ pub fn states(app: &App, study: &Study) -> Vec<State> {
 /// The state that is picked.
 pub fn picked(app: &App, study: &Study) -> Option<State> {
     let mut all = states(app, study);
-    let place = place(study, &all)?;
+    let place = place(app, study, &all)?;
     Some(all.swap_remove(place))
 }
 
-/// The place of the state that is picked.
-pub fn place(study: &Study, all: &[State]) -> Option<usize> {
+/// The place of the state that is picked; where its branch has none, of the state nearest to where the branch ended.
+pub fn place(app: &App, study: &Study, all: &[State]) -> Option<usize> {
     let last = all.len().checked_sub(1)?;
     let on = |branch: usize, stretch: Option<usize>| {
         let is_it = |met: &Met| met.branch == branch && stretch.is_none_or(|stretch| met.stretch == stretch);
@@ -93,7 +94,10 @@ pub fn place(study: &Study, all: &[State]) -> Option<usize> {
             let name = study.name_of_chosen();
             all.iter().position(|one| !one.name.is_empty() && Some(&one.name) == name.as_ref())
         }
-        Pick::Branch(branch, stretch) => on(branch, Some(stretch)).or_else(|| on(branch, None)),
+        Pick::Branch(branch, stretch) => {
+            let nearest = || nearest_to_end(study, known(app, study)?.0, branch, all);
+            on(branch, Some(stretch)).or_else(|| on(branch, None)).or_else(nearest)
+        }
         Pick::Place(place) => Some(place.min(last)),
     };
     found.or(Some(0))
@@ -113,13 +117,25 @@ fn size(study: &Study) -> Vec<f64> {
 /// of it.
 const NEAR: f64 = 0.02;
 
+/// How far apart two states are: the largest difference of an abundance, as a share of the search box.
+fn apart(a: &[f64], b: &[f64], size: &[f64]) -> f64 {
+    let one = |((a, b), size): ((&f64, &f64), &f64)| (a - b).abs() / size;
+    a.iter().zip(b).zip(size).map(one).fold(0.0, f64::max)
+}
+
+/// The state nearest to the point of a branch that is nearest to the rule.
+fn nearest_to_end(study: &Study, response: &Response, branch: usize, all: &[State]) -> Option<usize> {
+    let at = rule(study)?;
+    let points = response.branches.get(branch)?.points.iter().filter(|point| point.feasible);
+    let end = points.min_by(|a, b| (a.at - at).abs().total_cmp(&(b.at - at).abs()))?;
+    let size = size(study);
+    let off = |place: &usize| apart(&all[*place].state, &end.state, &size);
+    (0..all.len()).min_by(|a, b| off(a).total_cmp(&off(b)))
+}
+
 /// The nearest of those that are left, if it is near.
 fn nearest(free: &[Option<(Met, String)>], state: &[f64], size: &[f64]) -> Option<usize> {
-    let apart = |met: &Met| {
-        let one = |((a, b), size): ((&f64, &f64), &f64)| (a - b).abs() / size;
-        met.state.iter().zip(state).zip(size).map(one).fold(0.0, f64::max)
-    };
-    let left = free.iter().enumerate().filter_map(|(k, one)| Some((k, apart(&one.as_ref()?.0))));
+    let left = free.iter().enumerate().filter_map(|(k, one)| Some((k, apart(&one.as_ref()?.0.state, state, size))));
     left.filter(|(_, apart)| *apart <= NEAR).min_by(|a, b| a.1.total_cmp(&b.1)).map(|(k, _)| k)
 }
 
@@ -133,10 +149,7 @@ fn name(study: &Study, joined: &[Met], met: &Met) -> String {
 fn equilibrium(solved: &Solved, study: &Study, met: &Met) -> Option<String> {
     let size = size(study);
     let list = &solved.equilibria.list;
-    let apart = |place: usize| {
-        let one = |((a, b), size): ((&f64, &f64), &f64)| (a - b).abs() / size;
-        list[place].state.iter().zip(&met.state).zip(&size).map(one).fold(0.0, f64::max)
-    };
+    let apart = |place: usize| apart(&list[place].state, &met.state, &size);
     let near = (0..list.len()).map(|place| (place, apart(place))).filter(|(_, apart)| *apart <= NEAR);
     let (place, _) = near.min_by(|a, b| a.1.total_cmp(&b.1))?;
     study.names(study.current).get(place).cloned()

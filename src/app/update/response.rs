@@ -37,7 +37,7 @@ pub(super) fn walk(app: &mut App, step: Step) {
     let Some(study) = &app.study else { return };
     let all = states(app, study);
     let page = usize::from(parts(app.size, all.len()).states.rows.saturating_sub(1).max(1));
-    let Some(now) = place(study, &all) else { return };
+    let Some(now) = place(app, study, &all) else { return };
     let next = stepped(now, all.len(), page, step);
     let pick = pick(&all, next);
     if let Some(study) = &mut app.study {
@@ -57,7 +57,7 @@ fn move_to(app: &mut App, at: f64) {
     let Some(study) = &app.study else { return };
     let all = states(app, study);
     // Who is on a branch is looked for there at whatever value, also after it was gone for a while.
-    let kept = match (study.responding.pick, place(study, &all)) {
+    let kept = match (study.responding.pick, place(app, study, &all)) {
         (Pick::Selected | Pick::Place(_), Some(place)) => pick(&all, place),
         (kept, _) => kept,
     };
@@ -159,7 +159,7 @@ pub(super) fn settle(app: &mut App) {
     let Some(study) = &app.study else { return };
     let all = states(app, study);
     let parts = parts(app.size, all.len());
-    let chosen = place(study, &all).unwrap_or(0);
+    let chosen = place(app, study, &all).unwrap_or(0);
     let count = controls(study).len();
     let room = usize::from(parts.states.rows.saturating_sub(1));
     let from = scrolled(study.responding.from, chosen, all.len(), room);
