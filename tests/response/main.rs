@@ -9,5 +9,7 @@ mod by_hand;
 mod closest;
 mod margins;
 mod plot;
+mod setting;
 mod support;
+mod thresholds;
 mod yields;

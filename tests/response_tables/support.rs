@@ -3,10 +3,12 @@
 use nalgebra::Complex;
 use restpoint::analysis::linearise::Kind;
 use restpoint::analysis::response::{
-    Advice, Arm, Band, BestYield, Branch, ClosestEdge, Control, Criticality, Edge, Ending, Gap, GapReason, Margins,
-    OpenAccess, Point, Response, Station, Taking, Threshold, ThresholdKind,
+    Advice, Arm, Band, BestYield, Branch, Chart, ChartCurve, ChartPoint, ClosestEdge, Control, Criticality, Edge,
+    Ending, Gap, GapReason, Margins, OpenAccess, Point, Region, RegionState, Response, Station, Taking, Threshold,
+    ThresholdKind,
 };
 use restpoint::model::{Model, ParameterId, SpeciesId};
+use restpoint::report::response::chart::{self, Charts};
 use restpoint::report::response::{Along, Chosen, FIELDS, Responses};
 
 use crate::table_support::{model, with_table_of};
@@ -161,4 +163,38 @@ pub(crate) fn with_responses_of<T>(model: &Model, use_it: impl Fn(&Responses<'_>
 /// The same of the model of the table.
 pub(crate) fn with_responses<T>(use_it: impl Fn(&Responses<'_>) -> T) -> T {
     with_responses_of(&model(), use_it)
+}
+
+/// A chart of E and r with a cusp: three states between two folds, one elsewhere.
+pub(crate) fn chart() -> Chart {
+    let control = |parameter, to, present| Control { parameter, from: 0.0, to, present };
+    let state = |kind, present: [bool; 2]| RegionState { present: present.to_vec(), kind: Some(kind) };
+    let stable = || state(Kind::StableNode, [true, true]);
+    let saddle = || state(Kind::Saddle, [true, false]);
+    let curve = |points: [[f64; 2]; 2], bounds: [bool; 2]| ChartCurve {
+        kind: ThresholdKind::Fold,
+        bounds_stable: bounds.to_vec(),
+        points: points.to_vec(),
+        states: vec![vec![40.0, 12.5], vec![41.0, 13.5]],
+        closed: false,
+    };
+    Chart {
+        controls: [control(CONTROL, 2.0, 1.0), control(ParameterId(0), 4.0, 0.5)],
+        curves: vec![curve([[0.5, 0.0], [1.5, 3.0]], [true, true]), curve([[2.0, 0.0], [1.5, 3.0]], [false, true])],
+        points: vec![ChartPoint { kind: ThresholdKind::Cusp, at: [1.5, 3.0], state: vec![41.0, 13.5], error: 1e-12 }],
+        regions: vec![
+            Region { inside: [0.25, 2.0], equilibria: vec![saddle(), stable()], complete: true },
+            Region { inside: [1.25, 1.0], equilibria: vec![saddle(), saddle(), stable(), stable()], complete: false },
+        ],
+        cells: vec![Some(0), Some(1), Some(0), None],
+        grid: [2, 2],
+    }
+}
+
+/// Uses the charts of a model's three scenarios, of which the last two are not there.
+pub(crate) fn with_charts_of<T>(model: &Model, use_it: impl Fn(&Charts<'_>) -> T) -> T {
+    let charts = [Some(chart()), None, None];
+    let chosen = Chosen::all(&chart::FIELDS);
+    let (controls, ranges) = ([CONTROL, ParameterId(0)], [[0.0, 2.0], [0.0, 4.0]]);
+    with_table_of(model, None, |table| use_it(&Charts { table, controls, ranges, chosen: &chosen, charts: &charts }))
 }

@@ -26,6 +26,7 @@ use crate::num::eigen::{Spectrum, Unsolved, eigenvalues, spectrum};
 use crate::num::interval::Interval;
 use classify::Linear;
 use jacobian::Rows;
+pub use nonlinear::forced::{Coefficient, Forced};
 use place::Border;
 use proof::Proof;
 

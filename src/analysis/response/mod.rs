@@ -7,6 +7,7 @@
 
 mod advice;
 mod bands;
+pub mod chart;
 mod closest;
 mod curve;
 mod defining;

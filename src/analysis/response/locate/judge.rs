@@ -109,7 +109,7 @@ fn face_slopes(equations: &Equations, face: &Face, free: &[f64]) -> Option<(Vec<
 
 /// Right and left vector of the kernel of Fₓ in the sizes of species and rows, those sizes of rows, and F's slopes by the
 /// controls.
-fn kernel_at(
+pub(in crate::analysis::response) fn kernel_at(
     equations: &Equations,
     face: &Face,
     sizes: &Sizes,
@@ -162,7 +162,13 @@ fn crossing(
 }
 
 /// Second and third Taylor coefficients of F along a direction, given in the sizes of species.
-fn along(equations: &Equations, face: &Face, direction: &[f64], sizes: &Sizes, free: &[f64]) -> Option<[Vec<f64>; 2]> {
+pub(in crate::analysis::response) fn along(
+    equations: &Equations,
+    face: &Face,
+    direction: &[f64],
+    sizes: &Sizes,
+    free: &[f64],
+) -> Option<[Vec<f64>; 2]> {
     let tape = equations.tape(face);
     let still = |value: &f64| Jet::line(*value, 0.0);
     let mut run = tape.start(&equations.values.iter().map(still).collect::<Vec<_>>());

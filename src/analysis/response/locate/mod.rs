@@ -7,7 +7,7 @@
 
 mod attempt;
 pub mod describe;
-mod judge;
+pub(super) mod judge;
 
 use crate::expr::graph::{NodeId, Operation};
 

@@ -115,8 +115,14 @@ fn scenario<'r>(one: &One<'r>, form: Form, page: Page) -> Vec<Part<'r>> {
     if form == Form::Text {
         parts.push(Part::Drawing(map::drawing(one, page)));
     }
-    parts.extend(headed("Regions, and the states at a place inside each", sheets::regions(one, glyphs(form, page))));
+    let regions = sheets::regions(one, glyphs(form, page));
+    parts.extend(match form {
+        // Lists of states are too long for a column beside others.
+        Form::Text => sheets::regions_said(one, glyphs(form, page)).into_iter().map(Part::Said).collect(),
+        _ => headed("Regions, and the states at a place inside each", regions),
+    });
     parts.extend(headed("Points at which curves meet or change (numerical)", sheets::points(one)));
+    parts.extend(sheets::points_said(one).into_iter().map(Part::Said));
     parts.extend(headed("Curves of thresholds between regions (numerical)", sheets::curves(one)));
     parts
 }

@@ -41,6 +41,22 @@ pub(super) fn regions(one: &One<'_>, glyphs: Glyphs) -> Sheet {
     Sheet { heads, rows: one.chart.regions.iter().enumerate().map(row).collect() }
 }
 
+/// The same as sentences.
+pub(super) fn regions_said(one: &One<'_>, glyphs: Glyphs) -> Vec<String> {
+    let said = |(place, region): (usize, &Region)| {
+        let [x, y] = one.chart.controls.map(|control| name(one.table.model, control.parameter));
+        let sure = if region.complete { proof(true) } else { UNDECIDED };
+        let count = match region.equilibria.len() {
+            1 => "1 state".to_owned(),
+            count => format!("{count} states"),
+        };
+        let [at_x, at_y] = region.inside.map(human);
+        let states = states(one, region, glyphs);
+        format!("{}: {count}, {sure} at {x} = {at_x}, {y} = {at_y}: {states}.", letter(place))
+    };
+    one.chart.regions.iter().enumerate().map(said).collect()
+}
+
 /// States in words, equal ones counted, those that hold first.
 pub(super) fn states(one: &One<'_>, region: &Region, glyphs: Glyphs) -> String {
     let mut all: Vec<(bool, String, usize)> = Vec::new();
@@ -68,15 +84,19 @@ pub(super) fn points(one: &One<'_>) -> Sheet {
     let mut heads = vec![Head::new("point", Align::Left)];
     heads.extend(control_heads(one));
     heads.extend(state_heads(one.table));
-    heads.push(Head::new("what it means", Align::Left));
     let row = |(place, point): (usize, &ChartPoint)| {
         let mut cells = vec![Cell::new(format!("{} {}", mark(place), kind(point.kind)))];
         cells.extend(point.at.map(|x| Cell::new(human(x))));
         cells.extend(state_cells(&point.state));
-        cells.push(Cell::new(of_point(point.kind)));
         cells
     };
     Sheet { heads, rows: one.chart.points.iter().enumerate().map(row).collect() }
+}
+
+/// What each point means.
+pub(super) fn points_said(one: &One<'_>) -> Vec<String> {
+    let points = one.chart.points.iter().enumerate();
+    points.map(|(place, point)| format!("{} {}: {}.", mark(place), kind(point.kind), of_point(point.kind))).collect()
 }
 
 /// Each curve: what happens on it, from where to where it goes, and whether a stable state is lost there.
