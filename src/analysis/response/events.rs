@@ -3,6 +3,9 @@
 use super::curve::Sample;
 use super::piece::Piece;
 
+/// An abundance this share of the box's side below 0 is there by rounding.
+const ROUNDING: f64 = 1e-12;
+
 /// Something that changes between two points.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
 pub(super) enum Change {
@@ -41,11 +44,12 @@ pub(super) fn changes(piece: &Piece, sides: &[[f64; 2]], before: &Sample, after:
     }
     for i in 0..m {
         let (x, y) = (before.at[i], after.at[i]);
-        if (x < 0.0) != (y < 0.0) {
+        let [lower, upper] = sides[i];
+        let nothing = -ROUNDING * upper.abs();
+        if (x < nothing) != (y < nothing) {
             out.push(Change::Zero(i));
             reversals += usize::from(piece.is_divided[i]);
         }
-        let [lower, upper] = sides[i];
         if (x > upper) != (y > upper) || (lower > 0.0 && (x < lower) != (y < lower)) {
             out.push(Change::Side(i));
         }

@@ -9,6 +9,7 @@ mod advice;
 mod bands;
 pub mod chart;
 mod closest;
+mod cover;
 mod curve;
 mod defining;
 pub mod equations;

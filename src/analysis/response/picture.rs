@@ -11,6 +11,8 @@ use nalgebra::Complex;
 use super::curve::{Curve, Sample};
 use super::equations::Equations;
 use super::events::Change;
+use super::locate::describe::Describer;
+use super::locate::{self, Located, Locator, Sign};
 use super::piece::{Piece, Pieces};
 use super::walk::{End, Event, Ground, Node, Walk, distance};
 use super::{Arm, Branch, Control, Ending, Point, Response, Threshold, ThresholdKind};
@@ -47,6 +49,8 @@ pub(super) struct Picture<'e> {
     pub(super) starts: VecDeque<Start>,
     pub(super) stop: &'e dyn Fn() -> bool,
     values: Rc<[f64]>,
+    locator: Locator,
+    describer: Describer,
 }
 
 /// A branch that was followed.
@@ -60,7 +64,12 @@ pub(super) struct Followed {
 }
 
 impl<'e> Picture<'e> {
-    pub(super) fn new(equations: &'e mut Equations, control: &Control, stop: &'e dyn Fn() -> bool) -> Self {
+    pub(super) fn new(
+        equations: &'e mut Equations,
+        control: &Control,
+        describer: Describer,
+        stop: &'e dyn Fn() -> bool,
+    ) -> Self {
         let values: Rc<[f64]> = equations.values.clone().into();
         Self {
             equations,
@@ -71,6 +80,8 @@ impl<'e> Picture<'e> {
             starts: VecDeque::new(),
             stop,
             values,
+            locator: Locator::new(),
+            describer,
         }
     }
 
@@ -135,7 +146,8 @@ impl<'e> Picture<'e> {
     /// The state of all species at a point of a piece.
     fn whole(&self, piece: &Piece, at: &[f64]) -> Vec<f64> {
         let mut state = vec![0.0; self.equations.species];
-        piece.moving.iter().zip(at).for_each(|(&i, &x)| state[i] = x);
+        // Without the sign of a 0.
+        piece.moving.iter().zip(at).for_each(|(&i, &x)| state[i] = x + 0.0);
         state
     }
 
@@ -222,7 +234,12 @@ impl<'e> Picture<'e> {
                 }
                 self.note(piece, &node.sample, event, beyond)
             });
-            points.push(self.point(piece, &node.sample, threshold));
+            let mut point = self.point(piece, &node.sample, threshold);
+            if let Some(threshold) = threshold {
+                point.at = self.thresholds[threshold].at;
+                point.state.clone_from(&self.thresholds[threshold].state);
+            }
+            points.push(point);
         }
     }
 
@@ -266,31 +283,66 @@ impl<'e> Picture<'e> {
         if !self.is_feasible(&state) {
             return None;
         }
+        let found = self.threshold(piece, sample, event, beyond, &meaning, state);
         let mut direction = vec![0.0; self.equations.species + 1];
         piece.moving.iter().zip(&sample.direction).for_each(|(&i, &part)| direction[i] = part);
         direction[self.equations.species] = sample.direction[piece.moving.len()];
         for (present, is_across) in meaning.leads_to {
             let across = is_across.then(|| direction.clone());
-            self.starts.push_back(Start { present, state: state.clone(), control: self.control_of(sample), across });
+            self.starts.push_back(Start { present, state: found.state.clone(), control: found.at, across });
         }
-        let kink = event.changes.iter().find_map(|change| match change {
-            Change::Kink(k) => Some(*k),
-            _ => None,
-        });
-        let other_side = kink.and(beyond).map(|(next, start)| self.eigenvalues(next, start));
-        let found = Threshold {
+        Some(self.merged(found))
+    }
+
+    /// The threshold that an event is, by the system that defines it; where that has no root, as it was bracketed.
+    fn threshold(
+        &mut self,
+        piece: &Rc<Piece>,
+        sample: &Sample,
+        event: &Event,
+        beyond: Option<&(Rc<Piece>, Sample)>,
+        meaning: &super::switch::Meaning,
+        state: Vec<f64>,
+    ) -> Threshold {
+        if let Some(sign) = meaning.sign.clone()
+            && let Some((found, event)) = self.located(piece, sign, sample, event)
+        {
+            let event = locate::Event { face: &piece.face, sign: event, before: &found.1[0], after: &found.1[1] };
+            let mut threshold = self.describer.threshold(self.equations, &event, &found.0);
+            if meaning.kind == ThresholdKind::Pitchfork {
+                threshold.kind = meaning.kind;
+            }
+            threshold.species = meaning.species.map(SpeciesId).or(threshold.species);
+            return threshold;
+        }
+        Threshold {
             kind: meaning.kind,
             at: self.control_of(sample),
             state,
             eigenvalues: event.eigenvalues.clone(),
-            other_side,
+            other_side: beyond.map(|(next, start)| self.eigenvalues(next, start)),
             criticality: None,
             species: meaning.species.map(SpeciesId),
             arms: Vec::new(),
             kink: None,
             error: event.error,
-        };
-        Some(self.merged(found))
+        }
+    }
+
+    /// An event's root, if it is where the event was.
+    fn located(
+        &mut self,
+        piece: &Rc<Piece>,
+        sign: Sign,
+        sample: &Sample,
+        event: &Event,
+    ) -> Option<((Located, [Vec<f64>; 2]), Sign)> {
+        let [before, after] = &event.bracket;
+        let asked = locate::Event { face: &piece.face, sign: sign.clone(), before, after };
+        let found = self.locator.locate(self.equations, &asked)?;
+        let width = self.width();
+        let is_here = (found.at - self.control_of(sample)).abs() <= SAME[0].max(1e-5) * width;
+        is_here.then(|| ((found, event.bracket.clone()), sign))
     }
 
     fn eigenvalues(&self, piece: &Piece, sample: &Sample) -> Vec<Complex<f64>> {

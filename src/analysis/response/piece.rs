@@ -54,6 +54,8 @@ pub(super) struct Piece {
     pub(super) differences: usize,
     /// Whole rows over all species and the control, with derivatives: for what is rarely asked.
     pub(super) whole: Rc<Tape>,
+    /// The face as written, kinks and all.
+    pub(super) face: Face,
     rows: Vec<NodeId>,
 }
 
@@ -193,6 +195,7 @@ fn compiled(equations: &mut Equations, frame: &Frame, sides: &[bool], whole: Rc<
         takings,
         differences,
         whole,
+        face: frame.face.clone(),
         rows,
     }
 }

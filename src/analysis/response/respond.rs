@@ -6,8 +6,9 @@
 use std::collections::VecDeque;
 
 use super::equations::Equations;
+use super::locate::describe::Describer;
 use super::picture::{Picture, Start};
-use super::{Control, Gap, GapReason, Response};
+use super::{Control, Response};
 use crate::analysis::equilibria::{Budget, Equilibrium, Problem, all};
 use crate::analysis::subject::Subject;
 
@@ -25,7 +26,8 @@ pub fn respond(
 ) -> Response {
     let mut equations = Equations::new(subject, &[control.parameter]);
     let stop: &dyn Fn() -> bool = &|| (budget.stop)();
-    let mut picture = Picture::new(&mut equations, control, stop);
+    let describer = Describer::new(subject, &[control.parameter]);
+    let mut picture = Picture::new(&mut equations, control, describer, stop);
     if !(control.from < control.to) {
         return picture.response(&[]);
     }
@@ -40,9 +42,8 @@ pub fn respond(
     picture.follow_all();
     let present = if is_inside { &states[..] } else { &[] };
     told(&picture.response(present));
-    let mut response = picture.response(present);
-    response.gaps = vec![Gap { from: control.from, to: control.to, reason: GapReason::Budget }];
-    response
+    let gaps = super::cover::cover(&mut picture, budget.boxes);
+    Response { gaps, ..picture.response(present) }
 }
 
 fn starts(list: &[Equilibrium], control: f64) -> VecDeque<Start> {

@@ -11,6 +11,7 @@ use std::rc::Rc;
 use super::ThresholdKind;
 use super::curve::{Curve, Sample, dot};
 use super::events::{self, Change};
+use super::locate::Sign;
 use super::picture::Picture;
 use super::piece::Piece;
 use super::walk::{Event, distance};
@@ -29,6 +30,8 @@ const MEETS: f64 = 1e-5;
 pub(super) struct Meaning {
     pub(super) kind: ThresholdKind,
     pub(super) species: Option<usize>,
+    /// What changed its sign, as the system that defines it is asked for.
+    pub(super) sign: Option<Sign>,
     /// Whose abundance is 0 there.
     pub(super) vanish: Vec<usize>,
     /// Faces whose branch passes there, and whether it crosses the known one within the face.
@@ -52,7 +55,7 @@ impl Meaning {
                 _ => {}
             }
         }
-        let mut meaning = Self { kind: ThresholdKind::Fold, species: None, vanish, leads_to: Vec::new() };
+        let mut meaning = Self { kind: ThresholdKind::Fold, species: None, sign: None, vanish, leads_to: Vec::new() };
         let crosses = if has(Change::Turn) { ThresholdKind::Pitchfork } else { ThresholdKind::Transcritical };
         let without: Vec<bool> =
             piece.present.iter().enumerate().map(|(i, &is)| is && !meaning.vanish.contains(&i)).collect();
@@ -91,8 +94,37 @@ impl Meaning {
             };
             meaning.species = leaves.filter(|_| meaning.kind == ThresholdKind::Exit);
         }
-        debug_assert_eq!(state.len(), piece.present.len());
+        meaning.sign = meaning.asked(piece, event, picture, state);
         meaning
+    }
+
+    fn asked(&self, piece: &Piece, event: &Event, picture: &Picture<'_>, state: &[f64]) -> Option<Sign> {
+        let sign = |change: &Change| match *change {
+            Change::Turn => Sign::Turn,
+            Change::Zero(i) => Sign::Abundance(piece.moving[i]),
+            Change::Side(i) => {
+                let i = piece.moving[i];
+                let [lower, upper] = picture.equations.sides[i];
+                Sign::Side(i, usize::from((state[i] - upper).abs() < (state[i] - lower).abs()))
+            }
+            Change::Growth(place) => Sign::Growth(piece.alone[place]),
+            Change::Together => Sign::Block(piece.together.clone()),
+            Change::Crossing => Sign::Crossing,
+            Change::Pair => Sign::Pair(None),
+            Change::Alternation => Sign::Flip(None),
+            Change::Kink(k) => Sign::Kink(piece.kinks[k].node),
+        };
+        let rank = |change: &&Change| match change {
+            Change::Kink(_) => 0,
+            Change::Zero(_) => 1,
+            Change::Growth(_) | Change::Together => 2,
+            Change::Crossing => 3,
+            Change::Turn => 4,
+            Change::Alternation => 5,
+            Change::Pair => 6,
+            Change::Side(_) => 7,
+        };
+        event.changes.iter().min_by_key(rank).map(sign)
     }
 }
 

@@ -53,6 +53,8 @@ pub(super) struct Event {
     pub(super) eigenvalues: Vec<Complex<f64>>,
     /// How far off it may be, in the control's unit.
     pub(super) error: f64,
+    /// Points close by on either side.
+    pub(super) bracket: [Vec<f64>; 2],
 }
 
 /// How a walk ended.
@@ -361,15 +363,23 @@ impl<'w, 'p> Walk<'w, 'p> {
             together.push(change);
         }
         let error = (ends[1].at[self.m()] - ends[0].at[self.m()]).abs();
+        let bracket = ends.map(|end| end.at.clone());
         if let Some(left) = &left {
             self.inspect(before, left, depth - 1);
-            self.nodes.push(Node { sample: left.clone(), event: None });
         }
+        self.part_from_last(&point);
         let eigenvalues = self.eigenvalues_at(&mut point);
-        self.nodes.push(Node { sample: point, event: Some(Event { changes: together, eigenvalues, error }) });
+        self.nodes.push(Node { sample: point, event: Some(Event { changes: together, eigenvalues, error, bracket }) });
         if let Some(right) = &right {
-            self.nodes.push(Node { sample: right.clone(), event: None });
             self.inspect(right, after, depth - 1);
+        }
+    }
+
+    /// Between two events there is a point, to tell what the branch is like there.
+    fn part_from_last(&mut self, point: &Sample) {
+        let last = self.nodes.last().filter(|node| node.event.is_some()).map(|node| node.sample.clone());
+        if let Some(middle) = last.and_then(|last| self.between(&last, point, 0.5)) {
+            self.nodes.push(Node { sample: middle, event: None });
         }
     }
 
@@ -439,9 +449,11 @@ impl<'w, 'p> Walk<'w, 'p> {
             self.inspect(here, &point, DEEPEST);
         }
         let mut point = point;
+        self.part_from_last(&point);
         let eigenvalues = self.eigenvalues_at(&mut point);
         let error = 1e-12 * self.curve.scale[self.m()];
-        let event = Event { changes: vec![Change::Kink(k)], eigenvalues, error };
+        let bracket = [here.at.clone(), next.at.clone()];
+        let event = Event { changes: vec![Change::Kink(k)], eigenvalues, error, bracket };
         self.nodes.push(Node { sample: point, event: Some(event) });
         Some(End::Kink(k))
     }
