@@ -49,7 +49,8 @@ fn side_by_side(app: &App, study: &Study) -> Vec<Task> {
     let sketches = slots.iter().zip(&parts.columns).filter_map(|(&slot, [_, area])| {
         painting(study, slot, Size { columns: area.columns.into(), rows: area.rows.into() }).map(Task::Paint)
     });
-    sketches.chain(paths(study)).chain(beside::task(app, study)).collect()
+    let responses = slots.iter().filter_map(|&slot| response::respond_in(app, study, slot));
+    sketches.chain(paths(study)).chain(beside::task(app, study)).chain(responses).collect()
 }
 
 /// The branches, what is at the rule, and its sketch where there is room.

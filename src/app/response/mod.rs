@@ -2,11 +2,14 @@
 //!
 //! [`Responding`] is what the user chose; [`control`] and [`rule`] are what that comes to in the slot that is looked at.
 //! [`respond`] and [`at_rule`] are the work to be done, [`known`] and [`there`] what came of it, [`parts`] says where things
-//! stand. `states` has the states at the rule, `words` what is said.
+//! stand. `states` has the states at the rule, `words` what is said, `compared` what scenarios are
+//! compared by.
 
+mod compared;
 mod states;
 mod words;
 
+pub use compared::{Row, compared};
 pub use states::{State, chosen_branch, picked, place, states, there};
 pub use words::{amounts, rows, sentence, varied};
 
@@ -67,9 +70,14 @@ pub fn parameter(study: &Study) -> Option<(ParameterId, &Parameter)> {
 
 /// The control with its range and its present value in the slot that is looked at.
 pub fn control(study: &Study) -> Option<Control> {
+    control_in(study, study.current)
+}
+
+/// The same in a slot.
+fn control_in(study: &Study, slot: usize) -> Option<Control> {
     let (id, one) = parameter(study)?;
     let [from, to] = one.range.as_ref()?.value;
-    let present = *study.solved()?.values.get(id.0)?;
+    let present = *study.slots.get(slot)?.solved()?.values.get(id.0)?;
     Some(Control { parameter: id, from, to, present })
 }
 
@@ -88,8 +96,13 @@ pub fn fine_step(study: &Study) -> Option<f64> {
 
 /// Following every branch; `None` where nothing is found yet, or nothing can be varied.
 pub fn respond(app: &App, study: &Study) -> Option<Task> {
-    let (world, scene) = study.slot().and_then(|slot| slot.found.clone())?;
-    Some(Task::Respond { world, scene: Found(scene), control: control(study)?, budget: app.budget })
+    respond_in(app, study, study.current)
+}
+
+/// The same in a slot.
+pub fn respond_in(app: &App, study: &Study, slot: usize) -> Option<Task> {
+    let (world, scene) = study.slots.get(slot)?.found.clone()?;
+    Some(Task::Respond { world, scene: Found(scene), control: control_in(study, slot)?, budget: app.budget })
 }
 
 /// Seconds that the search at the rule may take; at a threshold there is no end to it.
@@ -111,7 +124,12 @@ pub fn known<'a>(app: &'a App, study: &Study) -> Option<(&'a Response, bool)> {
 
 /// The same with what it means for catches and margins, which comes last.
 pub fn along<'a>(app: &'a App, study: &Study) -> Option<(&'a Arc<Along>, bool)> {
-    let task = respond(app, study)?;
+    along_in(app, study, study.current)
+}
+
+/// The same in a slot.
+fn along_in<'a>(app: &'a App, study: &Study, slot: usize) -> Option<(&'a Arc<Along>, bool)> {
+    let task = respond_in(app, study, slot)?;
     let of = |answer: Option<&'a Answer>| match answer? {
         Answer::Responded(along) => along.as_ref(),
         _ => None,

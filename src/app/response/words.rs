@@ -1,13 +1,13 @@
 //! What is said of the response: the state that is picked and how it is lost, and each threshold in a line.
 
-use super::{known, parameter, picked, rule};
+use super::{along, parameter, picked, rule};
 use crate::analysis::response::Response;
 use crate::app::{App, Study};
 use crate::model::{Model, ParameterId};
 use crate::report::kinds;
 use crate::report::response::plot::{mark, marked, stays};
 use crate::report::response::words::{kind, setting, unit, with_unit};
-use crate::report::response::{Setting, meaning};
+use crate::report::response::{Setting, advised, meaning};
 use crate::report::table::human;
 
 /// Species that a line names.
@@ -19,9 +19,10 @@ pub fn sentence(app: &App, study: &Study) -> String {
         return "No parameter has a range, so there is nothing to vary: give one a range in the model file.".to_owned();
     };
     let place = setting(study.model(), id, at);
-    let Some((response, is_whole)) = known(app, study) else {
+    let Some((along, is_whole)) = along(app, study) else {
         return format!("{place}. Every equilibrium is being followed as {} varies.", one.name);
     };
+    let response = &along.response;
     let so_far = if is_whole { "" } else { "Branches are still being followed. " };
     let Some(state) = picked(app, study) else {
         return format!("{so_far}At {place} no equilibrium is known.");
@@ -37,14 +38,20 @@ pub fn sentence(app: &App, study: &Study) -> String {
     };
     let (ends, edges) = stays(response, &met);
     let from_to = format!("from {} to {}", human(ends[0]), with_unit(ends[1], unit(study.model(), id)));
-    format!("{here} It {lasts} {from_to} (numerical).{}", lost(study, response, at, ends, edges))
+    let advised = advised(&setting_of(study, response), &along.advice).join(" ");
+    let lost = lost(study, response, at, ends, edges);
+    format!("{here} It {lasts} {from_to} (numerical).{lost} {advised}")
+}
+
+fn setting_of<'s>(study: &'s Study, response: &'s Response) -> Setting<'s> {
+    Setting { model: study.model(), response, ids: study.names(study.current) }
 }
 
 /// What happens at the ends, the nearer one first.
 fn lost(study: &Study, response: &Response, at: f64, ends: [f64; 2], edges: [Option<usize>; 2]) -> String {
     let mut order = [0, 1];
     order.sort_by(|&a, &b| (ends[a] - at).abs().total_cmp(&(ends[b] - at).abs()));
-    let setting = Setting { model: study.model(), response, ids: study.names(study.current) };
+    let setting = setting_of(study, response);
     let one = |end: usize| {
         let threshold = response.thresholds.get(edges[end]?)?;
         let rank = marked(response).iter().position(|&place| Some(place) == edges[end]);
@@ -56,7 +63,7 @@ fn lost(study: &Study, response: &Response, at: f64, ends: [f64; 2], edges: [Opt
 
 /// The thresholds in words, in the order of their marks: each its mark, its kind, where it is and what it means.
 pub fn rows(study: &Study, response: &Response) -> Vec<String> {
-    let setting = Setting { model: study.model(), response, ids: study.names(study.current) };
+    let setting = setting_of(study, response);
     let row = |(rank, place): (usize, usize)| {
         let one = response.thresholds.get(place)?;
         Some(format!("{} {} {}: {}", mark(rank), human(one.at), kind(one.kind), meaning(&setting, one)))
