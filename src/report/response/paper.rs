@@ -47,19 +47,44 @@ pub(super) fn written(table: &Table<'_>, parts: &[Part<'_>], form: Form, page: P
 
 fn text(table: &Table<'_>, parts: &[Part<'_>], page: &Page) -> String {
     let mut text = heading(table, page);
-    let mut was_said = false;
+    let mut before = Kind::Apart;
     for part in parts {
         let lines = one(table, part, page);
-        let is_said = matches!(part, Part::Said(_) | Part::Marked(..) | Part::Meaning(..));
-        // Sentences stand close; all else has room around it, but for what stands below its heading.
-        if !lines.is_empty() && !(was_said && is_said) && !matches!(part, Part::Grid(_)) {
+        let kind = Kind::of(part);
+        // Sentences stand close, and so does what is below a heading; all else has room around it.
+        let is_close = kind != Kind::Apart
+            && (before == kind || before == Kind::Heading)
+            && !matches!(part, Part::Scenario(_) | Part::Heading(_));
+        if !lines.is_empty() && !is_close {
             text.push('\n');
         }
         text.push_str(&lines);
-        was_said = is_said || matches!(part, Part::Scenario(_) | Part::Heading(_));
+        before = kind;
     }
     text.push('\n');
     text + &page.paragraph("", CAUTION, 0)
+}
+
+/// What decides how close parts stand.
+#[derive(Clone, Copy, PartialEq, Eq)]
+enum Kind {
+    Heading,
+    Sentence,
+    Table,
+    Meaning,
+    Apart,
+}
+
+impl Kind {
+    fn of(part: &Part<'_>) -> Self {
+        match part {
+            Part::Scenario(_) | Part::Heading(_) => Self::Heading,
+            Part::Said(_) | Part::Marked(..) => Self::Sentence,
+            Part::Grid(_) => Self::Table,
+            Part::Meaning(..) => Self::Meaning,
+            Part::Failed(_) | Part::Drawing(_) => Self::Apart,
+        }
+    }
 }
 
 fn one(table: &Table<'_>, part: &Part<'_>, page: &Page) -> String {

@@ -20,14 +20,15 @@ pub struct Segment {
 
 /// The parts of a branch, from its first point on.
 ///
-/// A threshold's point ends one part and begins the next; its own type is of neither. Between parts that differ without a
+/// A threshold's point ends one part and begins the next; its own type is of neither. So does a lone critical point, as at
+/// an end of the range that happens to be a threshold. Between parts that differ without a
 /// threshold the last point of the first is the border.
 pub fn segments(branch: &Branch) -> Vec<Segment> {
     let points = &branch.points;
     let mut all: Vec<Segment> = Vec::new();
     let mut is_open = false;
     for (place, point) in points.iter().enumerate() {
-        if point.threshold.is_some() {
+        if point.threshold.is_some() || is_border(points, place) {
             if let Some(last) = all.last_mut().filter(|_| is_open) {
                 last.extend(place, point, None);
             }
@@ -51,6 +52,12 @@ pub fn segments(branch: &Branch) -> Vec<Segment> {
         is_open = true;
     }
     all
+}
+
+/// Whether a point is critical and none beside it is.
+fn is_border(points: &[Point], place: usize) -> bool {
+    let is_critical = |place: usize| points.get(place).is_some_and(|point| point.kind == Some(Kind::Undecided));
+    points.len() > 1 && is_critical(place) && !is_critical(place + 1) && !place.checked_sub(1).is_some_and(is_critical)
 }
 
 impl Segment {

@@ -98,8 +98,8 @@ pub(super) fn branches(one: &One<'_>, glyphs: Glyphs) -> Sheet {
     let control = control_head(one);
     let ends = ["from", "to"].map(|word| Head { title: format!("{word} {}", control.title), ..control.clone() });
     let mut heads = vec![Head::new("branch", Align::Left), Head::new("state", Align::Left)];
-    heads.extend([Head::new("with", Align::Left), Head::new("type", Align::Left)]);
     heads.extend(ends);
+    heads.extend([Head::new("with", Align::Left), Head::new("type", Align::Left)]);
     let rows = one.along.response.branches.iter().enumerate().flat_map(|(place, branch)| {
         let has_length = |part: &Segment| part.ends[0] != part.ends[1] || branch.points.len() == 1;
         let parts = segments(branch).into_iter().filter(move |part| part.feasible && has_length(part));
@@ -110,14 +110,16 @@ pub(super) fn branches(one: &One<'_>, glyphs: Glyphs) -> Sheet {
 
 fn segment(one: &One<'_>, place: usize, branch: &Branch, part: &Segment, glyphs: Glyphs) -> Vec<Cell> {
     let [low, high] = [part.ends[0].min(part.ends[1]), part.ends[0].max(part.ends[1])];
-    let types: Vec<String> = part.kinds.iter().map(|kind| look(*kind, glyphs)).collect();
+    let types = part.kinds.iter().enumerate();
+    let types: Vec<String> =
+        types.map(|(place, kind)| look(*kind, if place == 0 { glyphs } else { Glyphs::Words })).collect();
     vec![
         Cell::new(branch_id(place)),
         Cell::new(passes(one, branch).join(", ")),
-        Cell::new(community(one.table.model, &branch.present)),
-        Cell::new(types.join(", then ")),
         Cell::new(human(low)),
         Cell::new(human(high)),
+        Cell::new(community(one.table.model, &branch.present)),
+        Cell::new(types.join(", ")),
     ]
 }
 
@@ -152,7 +154,9 @@ fn best_yield(one: &One<'_>, best: &BestYield) -> Vec<Cell> {
         (false, Some(edge)) => format!("no: {}", kind(edge.kind)),
         (false, None) => "no: end of the range".to_owned(),
     };
-    let nearest = best.nearest.and_then(|(place, distance)| Some((threshold(place)?, distance)));
+    // That at which the yield is approached has been said.
+    let other = best.nearest.filter(|(place, _)| best.edge != Some(*place));
+    let nearest = other.and_then(|(place, distance)| Some((threshold(place)?, distance)));
     let nearest = nearest.map_or_else(String::new, |(edge, distance)| {
         let side = if edge.at > best.at { "above" } else { "below" };
         format!("{} at {}, {} {side}", kind(edge.kind), human(edge.at), share(distance))
@@ -165,14 +169,13 @@ fn best_yield(one: &One<'_>, best: &BestYield) -> Vec<Cell> {
 pub(super) fn bands(one: &One<'_>) -> Sheet {
     let heads = vec![
         Head::new("parameter", Align::Left),
-        Head::new("unit", Align::Left),
         head("present", ""),
         head("stable from", ""),
         head("to", ""),
         Head::new("below it", Align::Left),
         Head::new("above it", Align::Left),
         head("margin", ""),
-        Head::new("of the present", Align::Left),
+        Head::new("share", Align::Left),
     ];
     Sheet { heads, rows: one.along.margins.bands.iter().map(|band| self::band(one, band)).collect() }
 }
@@ -181,8 +184,7 @@ fn band(one: &One<'_>, band: &Band) -> Vec<Cell> {
     let margin = band.margin();
     let of_present = margin.filter(|_| band.present != 0.0).map_or_else(String::new, |(x, _)| share(x / band.present));
     vec![
-        Cell::new(name(one.table.model, band.parameter)),
-        Cell::new(unit(one.table.model, band.parameter)),
+        Cell::new(captioned(one, band.parameter)),
         Cell::new(human(band.present)),
         Cell::new(human(band.ends[0])),
         Cell::new(human(band.ends[1])),
@@ -191,6 +193,14 @@ fn band(one: &One<'_>, band: &Band) -> Vec<Cell> {
         Cell::new(margin.map_or_else(String::new, |(x, _)| human(x))),
         Cell::new(of_present),
     ]
+}
+
+/// A parameter with its unit.
+fn captioned(one: &One<'_>, parameter: ParameterId) -> String {
+    match (name(one.table.model, parameter), unit(one.table.model, parameter)) {
+        (name, "") => name.to_owned(),
+        (name, unit) => format!("{name}, {unit}"),
+    }
 }
 
 /// What happens at an end of a band.

@@ -76,8 +76,8 @@ fn with_unit_after(number: &str, unit: &str) -> String {
 
 fn lost(at: &Setting<'_>, band: &Band, threshold: &Threshold, amount: f64, end: usize) -> String {
     let side = ["below", "above"][end.min(1)];
-    let distance = if band.present == 0.0 {
-        format!("{} {side} the present 0", with_unit(amount, unit(at.model, band.parameter)))
+    let distance = if amount >= band.present.abs() {
+        format!("{} {side} the present {}", with_unit(amount, unit(at.model, band.parameter)), plain(band.present))
     } else {
         format!("{} {side} the present {}", share(amount / band.present), plain(band.present))
     };
