@@ -8,20 +8,20 @@ use crate::analysis::equilibria::{Budget, Progress};
 use crate::analysis::passage::Ways;
 use crate::analysis::paths::{Ended, follow};
 use crate::analysis::prepare::Prepared;
-use crate::analysis::response::{Advice, Control, Margins, Response, advise, band, margins, respond};
+use crate::analysis::response::{Advice, Control, Margins, Response};
 use crate::app::study::{TriedSet, World};
 use crate::app::task::{Compared, Found, Painting, Release};
 use crate::app::{Answer, Read, Source, Task};
 use crate::model::{Model, Name, Original, ParameterId};
 use crate::report::course::{Course, arrival, until_after};
-use crate::report::response::{Along, focus};
+use crate::report::response::Along;
 use crate::report::sketch::{Picture, View};
 use crate::report::table::{Names, Scene};
 
 use super::clock::Deadline;
 use super::files::from_home;
 use super::models::{COMPILED, Reading, compiled, read};
-use super::solver::{BOXES, names, names_over, passages, scene};
+use super::solver::{BOXES, along, names, names_over, passages, scene};
 use super::workers::Threads;
 
 /// What a task is done with.
@@ -152,8 +152,7 @@ fn prepare(world: &World, tried: &TriedSet, edition: u64) -> Result<Arc<World>, 
     }
 }
 
-/// Follows every equilibrium over the range of a control, and says what that means for catches and margins; tells of what it
-/// has on the way.
+/// Follows every equilibrium over the range of a control, and tells of what it has on the way.
 fn responded(world: &World, scene: &Found, control: &Control, budget: f64, means: &Means<'_>) -> Option<Along> {
     let deadline = Deadline::after(budget);
     let budget = Budget {
@@ -162,10 +161,6 @@ fn responded(world: &World, scene: &Found, control: &Control, budget: f64, means
         workers: &means.threads,
         observer: None,
     };
-    let solved = scene.solved()?;
-    let model = &world.original.model;
-    let mut subject = world.prepared.subject(model, scene.0.scenario).ok()?;
-    let list = &solved.equilibria.list;
     let part = |response: &Response| Along {
         response: response.clone(),
         advice: Advice::default(),
@@ -174,13 +169,8 @@ fn responded(world: &World, scene: &Found, control: &Control, budget: f64, means
         margins: Margins::default(),
     };
     let mut told = |response: &Response| (means.told)(Answer::Responded(Some(Arc::new(part(response)))));
-    let response = respond(&mut subject, control, list, &budget, &mut told);
-    told(&response);
-    let advice = advise(&mut subject, &response, budget.stop);
-    let focus = focus(model, solved);
-    let margins = focus.map_or_else(Margins::default, |which| margins(&mut subject, list, which, &budget));
-    let band = focus.and_then(|which| band(&response, list, which));
-    Some(Along { response, advice, focus, band, margins })
+    let varied = (control.parameter, [control.from, control.to]);
+    along(&world.original.model, &world.prepared, &scene.0, varied, &budget, &mut told)
 }
 
 /// Searches a scenario with one parameter at another value; the world that has it is for drawing only.

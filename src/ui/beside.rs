@@ -56,14 +56,7 @@ pub(super) fn with<T>(known: &Compared, show: impl FnOnce(&Comparison<'_>) -> T)
     show(&Comparison::new(&table, &known.passages))
 }
 
-fn lists(
-    app: &App,
-    study: &Study,
-    slots: &[usize],
-    comparison: &Comparison<'_>,
-    page: &mut Page<'_>,
-    parts: &Parts,
-) {
+fn lists(app: &App, study: &Study, slots: &[usize], comparison: &Comparison<'_>, page: &mut Page<'_>, parts: &Parts) {
     let row = study.beside.row.min(comparison.rows.len().saturating_sub(1));
     let Some(chosen) = comparison.rows.get(row) else { return };
     sentence(study, slots, comparison, chosen, page, parts.sentence);
@@ -151,13 +144,7 @@ fn abundances(found: &Equilibrium, page: &Page<'_>) -> String {
 }
 
 /// The selected equilibrium's quantities, with how each differs from the first scenario.
-fn numbers(
-    comparison: &Comparison<'_>,
-    chosen: &Identity,
-    responses: &[Row],
-    page: &mut Page<'_>,
-    parts: &Parts,
-) {
+fn numbers(comparison: &Comparison<'_>, chosen: &Identity, responses: &[Row], page: &mut Page<'_>, parts: &Parts) {
     let labels = Area { columns: parts.labels() - 1, ..parts.numbers };
     page.text(labels, [0, 0], &format!("{} type", chosen.id), Ink::Faint);
     for (scene, entry) in chosen.entries.iter().enumerate() {

@@ -38,7 +38,10 @@ pub fn compared(app: &App, study: &Study, slots: &[usize], name: &str) -> Vec<Ro
     let unit = unit(study.model(), id);
     let unit = if unit.is_empty() { String::new() } else { format!(", {unit}") };
     let mut rows = vec![
-        Row { label: format!("lost by {}{unit}", one.name), cells: each(&|slot, along| lost(study, slot, along, name)) },
+        Row {
+            label: format!("lost by {}{unit}", one.name),
+            cells: each(&|slot, along| lost(study, slot, along, name)),
+        },
         Row { label: "how lost".to_owned(), cells: each(&|slot, along| how(study, slot, along, name)) },
     ];
     let first = all.iter().flatten().find(|(_, is_whole)| *is_whole).map(|(along, _)| *along);
