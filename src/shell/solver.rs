@@ -4,7 +4,7 @@ use crate::analysis::assess::assess;
 use crate::analysis::equilibria::{Budget, all};
 use crate::analysis::passage::{Found, Passage, Ways, identify};
 use crate::analysis::prepare::Prepared;
-use crate::analysis::response::{Chart, Control, Response, advise, band, margins, respond};
+use crate::analysis::response::{Chart, Control, Response, advise, band, chart, margins, respond};
 use crate::model::{Model, ParameterId};
 use crate::report::response::{Along, focus};
 use crate::report::table::{Limits, Names, Scene, Solved};
@@ -95,13 +95,4 @@ pub fn passages(ways: &mut Ways, scenes: &[Scene], stop: &dyn Fn() -> bool) -> V
 fn found(scene: &Scene) -> Option<Found<'_>> {
     let solved = scene.outcome.as_ref().ok()?;
     Some(Found { scenario: scene.scenario, list: &solved.equilibria.list })
-}
-
-fn chart(
-    _: &mut crate::analysis::subject::Subject<'_>,
-    controls: [Control; 2],
-    _: &[crate::analysis::equilibria::Equilibrium],
-    _: &Budget<'_>,
-) -> Chart {
-    Chart { controls, curves: vec![], points: vec![], regions: vec![], cells: vec![], grid: [0, 0] }
 }

@@ -1,10 +1,11 @@
 //! What all screens share: the heading, the line on what happens, the keys that matter.
 
 use super::paint::Page;
-use crate::app::action::{Action, Direction, Step};
+use crate::app::action::{Action, Axis, Direction, Step};
+use crate::app::desk::Job;
 use crate::app::geometry::{Area, SMALLEST};
 use crate::app::keymap::{Place, key_of, place};
-use crate::app::{App, Screen, Study};
+use crate::app::{Answer, App, Screen, Study};
 use crate::report::grid::Ink;
 use unicode_width::UnicodeWidthStr;
 
@@ -53,6 +54,8 @@ pub(super) fn status(app: &App, page: &mut Page<'_>, area: Area) {
         let progress = job.progress;
         let text = format!("searching: {} faces, {} boxes; Esc stops it", progress.faces, progress.boxes);
         page.text(area, [0, 0], &text, Ink::Plain);
+    } else if let Some(job) = app.desk.following().filter(|_| app.screen == Screen::Response) {
+        page.text(area, [0, 0], &following(job), Ink::Plain);
     } else if app.reading.is_some() {
         page.text(area, [0, 0], "reading", Ink::Plain);
     } else if let Some(text) = offered(app) {
@@ -66,6 +69,21 @@ pub(super) fn status(app: &App, page: &mut Page<'_>, area: Area) {
         let text = [long, short].into_iter().find(|text| text.len() <= area.columns.into());
         page.text(area, [0, 0], text.unwrap_or("A local result about a model; the authority sets limits."), Ink::Faint);
     }
+}
+
+/// How far branches are followed.
+fn following(job: &Job) -> String {
+    let known = match &job.partly {
+        Some(Answer::Responded(Some(along))) => {
+            let response = &along.response;
+            let count =
+                |count: usize, one: &str, many: &str| format!("{count} {}", if count == 1 { one } else { many });
+            let branches = count(response.branches.len(), "branch", "branches");
+            format!("{branches} and {} so far", count(response.thresholds.len(), "threshold", "thresholds"))
+        }
+        _ => "nothing yet".to_owned(),
+    };
+    format!("following branches: {known}; Esc stops it")
 }
 
 /// What was tried last time and is in no file, and how to have it again.
@@ -136,12 +154,25 @@ fn hints(place: Place) -> Vec<(Action, &'static str)> {
             (Action::Write, "write"),
             leave,
         ],
+        Place::On(Screen::Response) => vec![
+            help,
+            (Action::Fine(Step::On), "move the rule"),
+            (Action::Threshold(Step::On), "next threshold"),
+            (Action::Step(Step::On), "next state"),
+            (Action::Other, "control"),
+            (Action::Species(Axis::Upwards), "quantity"),
+            (Action::TakeOver, "try it"),
+            (Action::Show(Screen::Equilibria), "equilibria"),
+            (Action::Write, "write"),
+            leave,
+        ],
         Place::On(_) => vec![
             help,
             (Action::Step(Step::On), "next"),
             (Action::Scenario(Step::On), "scenario"),
             (Action::Show(Screen::SideBySide), "side by side"),
             (Action::Show(Screen::Values), "values"),
+            (Action::Show(Screen::Response), "thresholds"),
             (Action::Show(Screen::Knock), "after a knock"),
             (Action::Show(Screen::Interactions), "interactions"),
             (Action::Point, "move a point"),

@@ -313,6 +313,6 @@ fn axes_are_named_with_their_units_and_cut_with_a_mark() {
         assert!(lines[19].trim_start() == "Q, kt/yr", "{}", lines[19]);
     };
     check(Quantity::Abundance(0), 60, "N hake, kt");
-    check(Quantity::Taking(0), 60, "N of trawl, kt/yr");
-    check(Quantity::Taking(0), 16, "N of trawl, k...");
+    check(Quantity::Taking(0), 60, "trawl N, kt/yr");
+    check(Quantity::Taking(0), 16, "trawl N, kt/yr");
 }

@@ -39,7 +39,7 @@ pub use data::json;
 pub use fields::{Chosen, FIELDS, Field, UnknownField, guide};
 pub use meaning::{Setting, meaning};
 pub use segments::{Segment, segments};
-pub use summary::summary;
+pub use summary::{advised, spoken_of, summary};
 
 use super::table::columns::Glyphs;
 use super::table::{Form, Page, Scene, Solved, Style, Table, human, pretty, scene};

@@ -25,9 +25,7 @@ pub fn summary(at: &Setting<'_>, advice: &Advice, focus: Option<usize>, band: Op
         let name = name(at.model, at.response.control.parameter);
         return format!("{} No state depends on {name} here. ({})", all.join(" "), proof(false));
     }
-    all.extend(advice.best.iter().filter(|best| is_spoken_of(at, best)).map(|best| best_yield(at, best)));
-    all.extend(advice.removals.iter().map(|removal| removed(at, removal)));
-    all.extend(advice.open_access.iter().map(|open| open_access(at, open)));
+    all.extend(advised(at, advice));
     format!("{} ({})", all.join(" "), proof(false))
 }
 
@@ -42,11 +40,19 @@ fn is_flat(response: &Response) -> bool {
     !response.branches.is_empty() && response.thresholds.is_empty() && response.branches.iter().all(stays)
 }
 
-/// Yields that a summary speaks of: the total, or that of the only one taken, and values.
-fn is_spoken_of(at: &Setting<'_>, best: &BestYield) -> bool {
-    let is_amount = |place: usize| at.response.takings.get(place).is_some_and(|taking| taking.species.is_some());
-    let amounts = (0..at.response.takings.len()).filter(|&place| is_amount(place)).count();
-    best.taking.is_none_or(|place| amounts == 1 || !is_amount(place))
+/// What is said of catches over the whole range, each a sentence.
+pub fn advised(at: &Setting<'_>, advice: &Advice) -> Vec<String> {
+    let mut all: Vec<String> = spoken_of(at.response, advice).map(|best| best_yield(at, best)).collect();
+    all.extend(advice.removals.iter().map(|removal| removed(at, removal)));
+    all.extend(advice.open_access.iter().map(|open| open_access(at, open)));
+    all
+}
+
+/// Yields that are spoken of: the total, or that of the only one taken, and values.
+pub fn spoken_of<'a>(response: &'a Response, advice: &'a Advice) -> impl Iterator<Item = &'a BestYield> {
+    let is_amount = |place: usize| response.takings.get(place).is_some_and(|taking| taking.species.is_some());
+    let amounts = (0..response.takings.len()).filter(|&place| is_amount(place)).count();
+    advice.best.iter().filter(move |best| best.taking.is_none_or(|place| amounts == 1 || !is_amount(place)))
 }
 
 fn present(at: &Setting<'_>) -> String {

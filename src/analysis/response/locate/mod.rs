@@ -170,7 +170,7 @@ impl Locator {
 
     /// Who moves in the system at a place.
     pub(super) fn moving(&self, place: usize) -> Option<&[usize]> {
-        self.compiled.get(place).map(|compiled| &compiled.moving[..])
+        self.compiled.get(place).map(|compiled| &compiled.face.moving[..])
     }
 
     /// The system at a place, and the species that its matrix is over.

@@ -3,7 +3,7 @@
 //! What matters more is drawn over what matters less: thresholds, states at the rule, branches, rules.
 
 use super::cut::{cut, whose};
-use super::{Quantity, View};
+use super::{Quantity, View, marked};
 use crate::analysis::field::{Frame, Window, nearest, rounded};
 use crate::analysis::response::Point;
 use crate::report::kinds::{self, Look, STROKES, Stroke};
@@ -21,7 +21,7 @@ pub(super) enum Mark {
     Branch(Stroke),
     /// A state at the rule, and whether it is selected.
     State(Look, bool),
-    /// A threshold, by its place in the list.
+    /// A threshold, by its place among those that are marked.
     Threshold(usize),
 }
 
@@ -122,11 +122,11 @@ impl Canvas {
 
     /// Each threshold in its cell, or where that has another one or a state in a cell beside it.
     fn thresholds(&mut self, view: &View<'_>) {
-        for place in 0..view.response.thresholds.len() {
+        for (rank, place) in marked(view.response).into_iter().enumerate() {
             let cell = threshold_place(view, place).and_then(|point| self.frame.cell(point));
             match cell.and_then(|cell| self.free(cell)) {
-                Some(cell) => self.put(cell, Mark::Threshold(place)),
-                None => self.left_out.push(place),
+                Some(cell) => self.put(cell, Mark::Threshold(rank)),
+                None => self.left_out.push(rank),
             }
         }
     }

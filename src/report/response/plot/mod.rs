@@ -1,8 +1,9 @@
 //! A response drawn in characters: the control across, a quantity upwards, one curve a branch.
 //!
 //! [`View`] says what is looked at, [`drawing`] lays it between its axes as a grid, [`signs`] says what its signs mean, as far
-//! as they occur, [`text()`] is both for a page, [`mark`] is the sign of a threshold, which whoever lists thresholds repeats, [`cut`] what a vertical rule
-//! meets. The stroke of a branch tells its type; it comes from the table of kinds. A part of a branch that is not feasible is
+//! as they occur, [`text()`] is both for a page, [`mark`] is the sign of each of the
+//! thresholds that [`marked`] lists, which whoever lists them repeats, [`cut`] what a vertical rule
+//! meets, [`stays`] how far that stays what it is. The stroke of a branch tells its type; it comes from the table of kinds. A part of a branch that is not feasible is
 //! not drawn. To draw something more: a `Mark` in `canvas`, its meaning in `signs`.
 
 mod canvas;
@@ -11,11 +12,12 @@ mod drawing;
 mod signs;
 mod text;
 
-pub use cut::{Met, cut};
+pub use cut::{Met, cut, stays};
 pub use drawing::{SMALLEST, drawing};
-pub use signs::{mark, not_marked, signs};
+pub use signs::{mark, marked, not_marked, signs};
 pub use text::text;
 
+use super::words;
 use crate::analysis::response::{Point, Response};
 use crate::model::Model;
 
@@ -75,8 +77,8 @@ pub fn quantities(model: &Model, response: &Response) -> Vec<Quantity> {
 
 /// Name and unit of the control, as an axis has them.
 pub fn control_caption(model: &Model, response: &Response) -> String {
-    let Some(parameter) = model.parameters.get(response.control.parameter.0) else { return String::new() };
-    with_unit(&parameter.name, parameter.unit.as_ref().map(|unit| unit.value.as_str()))
+    let parameter = response.control.parameter;
+    with_unit(words::name(model, parameter), words::unit(model, parameter))
 }
 
 fn species_caption(model: &Model, species: usize) -> String {
@@ -86,21 +88,15 @@ fn species_caption(model: &Model, species: usize) -> String {
     } else {
         format!("{} {}", species.symbol, species.name)
     };
-    with_unit(&name, species.unit.as_ref().map(|unit| unit.value.as_str()))
+    let unit = species.unit.as_ref().map(|unit| unit.value.as_str());
+    with_unit(&name, unit.filter(|unit| *unit != "1").unwrap_or_default())
 }
 
 fn taking_caption(model: &Model, response: &Response, place: usize) -> String {
     let Some(taking) = response.takings.get(place) else { return String::new() };
-    let per = &model.time_unit.value;
-    let Some(species) = taking.species.and_then(|id| model.species.get(id.0)) else {
-        return format!("value of {}, per {per}", taking.harvest);
-    };
-    let unit = species.unit.as_ref().map_or(String::new(), |unit| format!("{}/", unit.value));
-    let per = if unit.is_empty() { format!("per {per}") } else { format!("{unit}{per}") };
-    format!("{} of {}, {per}", species.symbol, taking.harvest)
+    with_unit(&words::taking(model, taking), &words::taking_unit(model, taking.species))
 }
 
-/// A unit of 1 says nothing.
-fn with_unit(name: &str, unit: Option<&str>) -> String {
-    unit.filter(|unit| *unit != "1").map_or_else(|| name.to_owned(), |unit| format!("{name}, {unit}"))
+fn with_unit(name: &str, unit: &str) -> String {
+    if unit.is_empty() { name.to_owned() } else { format!("{name}, {unit}") }
 }

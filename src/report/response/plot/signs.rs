@@ -1,8 +1,11 @@
 //! The signs of a drawing, and what is said of them: only of those that occur.
 
+use super::super::sheets::is_shown;
+use super::super::words;
+use super::View;
 use super::canvas::{Canvas, Mark};
 use super::drawing::cells;
-use super::{View, control_caption};
+use crate::analysis::response::Response;
 use crate::report::grid::Ink;
 use crate::report::kinds::STROKES;
 use crate::report::sketch::{Size, Style};
@@ -13,9 +16,15 @@ const MARKS: &str = "123456789ABCDEFGHIJKLMNOPQRSTUVWXYZ";
 /// The sign of all further ones.
 const FURTHER: char = '*';
 
-/// The sign of a threshold, by its place in the response's list: a digit, then a letter; all from the 36th on share one.
-pub fn mark(place: usize) -> char {
-    MARKS.chars().nth(place).unwrap_or(FURTHER)
+/// The thresholds that are marked and worth a list, by place: those that concern states that there can be.
+pub fn marked(response: &Response) -> Vec<usize> {
+    let all = response.thresholds.iter().enumerate();
+    all.filter(|(_, threshold)| is_shown(threshold)).map(|(place, _)| place).collect()
+}
+
+/// The sign of a threshold, by its place in [`marked`]: a digit, then a letter; all from the 36th on share one.
+pub fn mark(rank: usize) -> char {
+    MARKS.chars().nth(rank).unwrap_or(FURTHER)
 }
 
 impl Mark {
@@ -28,7 +37,7 @@ impl Mark {
             Self::Rule => either('║', '!'),
             Self::Branch(stroke) => either(stroke.glyph, stroke.ascii),
             Self::State(look, _) => either(look.glyph, look.ascii),
-            Self::Threshold(place) => mark(place),
+            Self::Threshold(rank) => mark(rank),
         }
     }
 
@@ -59,9 +68,11 @@ pub fn signs(view: &View<'_>, size: Size, style: Style) -> Vec<(String, String)>
         all.push(sign(Mark::Present, format!("present {name} = {present}")));
     }
     if let Some(at) = view.rule.filter(|_| has(Mark::Rule)) {
-        all.push(sign(Mark::Rule, format!("{name} = {}", human(at))));
+        let is_present = at.to_bits() == view.response.control.present.to_bits();
+        let present = if is_present { "present " } else { "" };
+        all.push(sign(Mark::Rule, format!("{present}{name} = {}", human(at))));
     }
-    let shown = |mark: Mark| if let Mark::Threshold(place) = mark { Some(place) } else { None };
+    let shown = |mark: Mark| if let Mark::Threshold(rank) = mark { Some(rank) } else { None };
     let mut thresholds: Vec<usize> = canvas.marks().filter_map(shown).collect();
     thresholds.sort_unstable();
     if let (Some(&first), Some(&last)) = (thresholds.first(), thresholds.last()) {
@@ -72,12 +83,11 @@ pub fn signs(view: &View<'_>, size: Size, style: Style) -> Vec<(String, String)>
     all
 }
 
-/// The thresholds, by place, that have no mark in a drawing of this size: they lie outside, or others are in their cells.
+/// The thresholds, by place in [`marked`], that have no mark in a drawing of this size: they lie outside, or others are in their cells.
 pub fn not_marked(view: &View<'_>, size: Size) -> Vec<usize> {
     cells(size).map_or_else(Vec::new, |[columns, rows]| Canvas::new(view, columns, rows).left_out)
 }
 
 fn control_name(view: &View<'_>) -> String {
-    let parameter = view.model.parameters.get(view.response.control.parameter.0);
-    parameter.map_or_else(|| control_caption(view.model, view.response), |parameter| parameter.name.clone())
+    words::name(view.model, view.response.control.parameter).to_owned()
 }

@@ -25,7 +25,7 @@ pub fn text(view: &View<'_>, rows: usize, page: &Page) -> String {
     }
     let left_out = not_marked(view, size);
     if !left_out.is_empty() {
-        let marks: Vec<String> = left_out.iter().map(|&place| mark(place).to_string()).collect();
+        let marks: Vec<String> = left_out.iter().map(|&rank| mark(rank).to_string()).collect();
         let said = format!("Thresholds outside the drawing, or in one cell with others: {}", marks.join(", "));
         text.push_str(&page.paragraph("", &said, INDENT));
     }
