@@ -43,12 +43,12 @@ fn text_says_it_all_in_words() {
          steer to it.",
         "Open access to trawl settles at E = 1.125, where its value is 0. (numerical)",
         "proved: no equilibrium is missing, except perhaps close to where branches meet: 1.438 to 1.562 (branches meet \
-         there, or nearly so); searched in full at 2 values of E.",
+         there, or nearly so); searched at 2 values of E.",
         "1 Hopf: cycles set in softly below E = 0.2500.",
         "a move of 0.1250, each parameter in widths of its range (numerical; 3 starts led there, and there may be a nearer \
          one).",
         "No stable state was found at the present E = 1. (numerical)",
-        "proved: no equilibrium in the search box is missing anywhere in the range; searched in full at 2 values of E.",
+        "proved: no equilibrium in the search box is missing anywhere in the range; searched at 2 values of E.",
         "No threshold was found in the range (numerical).",
         "FAILED: two.yaml:15:3: the formulas are too many.",
         CAUTION,

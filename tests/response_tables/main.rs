@@ -3,6 +3,7 @@
 
 #[path = "../cli_support/mod.rs"]
 mod cli_support;
+mod command;
 mod forms;
 mod meanings;
 mod support;

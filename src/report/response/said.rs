@@ -142,23 +142,23 @@ fn complete<'p>(response: &Response, one: &One<'_>) -> Part<'p> {
     let reasons =
         [GapReason::Meeting, GapReason::Unresolved, GapReason::Unjoined, GapReason::Undefined, GapReason::Budget];
     let open: Vec<String> = reasons.iter().filter_map(|&reason| of_reason(response, reason)).collect();
-    let stations = match response.stations.len() {
-        1 => "1 value".to_owned(),
-        count => format!("{count} values"),
+    let found = match response.stations.len() {
+        0 => String::new(),
+        1 => format!("; searched at 1 value of {}", name(one.table.model, control.parameter)),
+        count => format!("; searched at {count} values of {}", name(one.table.model, control.parameter)),
     };
-    let found = format!("searched in full at {stations} of {}", name(one.table.model, control.parameter));
     if super::is_complete(response) {
-        let said = format!("no equilibrium in the search box is missing anywhere in the range; {found}.");
+        let said = format!("no equilibrium in the search box is missing anywhere in the range{found}.");
         return Part::Marked(proof(true), Ink::Proved, said);
     }
     let only_meeting =
         response.gaps.iter().all(|gap| gap.reason == GapReason::Meeting) && response.undefined.is_empty();
     let said = if open.is_empty() { String::new() } else { format!(": {}", open.join("; ")) };
     if only_meeting {
-        let said = format!("no equilibrium is missing, except perhaps close to where branches meet{said}; {found}.");
+        let said = format!("no equilibrium is missing, except perhaps close to where branches meet{said}{found}.");
         return Part::Marked(proof(true), Ink::Proved, said);
     }
-    Part::Marked(INCOMPLETE, Ink::Undecided, format!("equilibria may be missing{said}; {found}."))
+    Part::Marked(INCOMPLETE, Ink::Undecided, format!("equilibria may be missing{said}{found}."))
 }
 
 /// Parts that are listed; more would bury it.
