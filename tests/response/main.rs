@@ -3,5 +3,6 @@
 #[path = "../common/mod.rs"]
 mod common;
 
+mod branches;
 mod setting;
 mod thresholds;

@@ -15,8 +15,10 @@ mod picture;
 mod piece;
 mod registry;
 mod respond;
+mod stations;
 mod switch;
 mod types;
+mod undefined;
 mod walk;
 
 pub use respond::respond;

@@ -27,6 +27,9 @@ const SAME: [f64; 2] = [1e-6, 1e-4];
 /// An abundance this share of the box below 0, or beyond its sides, is there by rounding.
 const ROUNDING: f64 = 1e-9;
 
+/// A point is clear of a threshold when it is this share of an abundance, or of the control, off.
+const CLEAR: f64 = 1e-4;
+
 /// Where a branch is to be followed from.
 #[derive(Clone, Debug)]
 pub(super) struct Start {
@@ -444,12 +447,32 @@ fn ending(end: End) -> Ending {
     }
 }
 
+/// The first point of those that follow a threshold that is clear of it, unless another threshold comes before.
+fn clear_of<'p>(following: impl Iterator<Item = &'p Point>, threshold: &Point) -> Option<&'p Point> {
+    let far = |point: &Point| {
+        let moved = |a: f64, b: f64| (a - b).abs() > CLEAR * a.abs().max(b.abs());
+        moved(point.at, threshold.at) || point.state.iter().zip(&threshold.state).any(|(&a, &b)| moved(a, b))
+    };
+    let mut last = None;
+    for point in following {
+        if point.threshold.is_some() {
+            return last;
+        }
+        last = Some(point);
+        if far(point) {
+            return last;
+        }
+    }
+    last
+}
+
 /// What of a branch begins at its thresholds.
 fn add_arms(thresholds: &mut [Threshold], branch: usize, present: &[bool], points: &[Point]) {
     for (place, point) in points.iter().enumerate() {
         let Some(threshold) = point.threshold else { continue };
-        let before = place.checked_sub(1).and_then(|before| points.get(before));
-        for beside in [before, points.get(place + 1)].into_iter().flatten() {
+        let before = clear_of(points[..place].iter().rev(), point);
+        let after = clear_of(points[place + 1..].iter(), point);
+        for beside in [before, after].into_iter().flatten() {
             let arm = Arm {
                 branch: Some(branch),
                 above: beside.at > point.at,
