@@ -5,6 +5,7 @@
 #[path = "../common/mod.rs"]
 mod common;
 
+mod branches;
 mod by_hand;
 mod chart;
 mod closest;

@@ -66,6 +66,8 @@ pub(super) struct Typed {
     pub(super) leading: Option<Complex<f64>>,
     /// How many of those who move repel; `None` where one of these eigenvalues is too near to the border to say.
     pub(super) unstable: Option<usize>,
+    /// Whether one of these is so near to the border that a small error may decide.
+    pub(super) is_near: bool,
     /// det(A + 1) of a map among those who move: it changes sign where a multiplier passes −1.
     pub(super) alternating: f64,
     /// Largest real part of the growth of those who are absent together.
@@ -164,6 +166,10 @@ impl<'p> Curve<'p> {
         sample.direction.extend(self.solutions[1].iter().zip(&self.scale).map(|(x, scale)| x / length * scale));
         sample.orientation = orientation;
         self.look(sample);
+        if sample.typed.is_near && self.evaluate(&sample.at) {
+            // The slopes were those before the last correction, which near the border is not near enough.
+            self.look(sample);
+        }
     }
 
     /// Fills in what is watched and the type at a point that was evaluated last.
