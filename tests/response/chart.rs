@@ -145,8 +145,8 @@ fn curves_are_met_by_lines() {
     has_point(&found, ThresholdKind::BogdanovTakens, [0.0625, 0.375]);
     // Clark (1990): two stocks that one fleet fishes; each is lost at E = r/q, whatever the other's r is.
     let found = whole("B27_clark_two_independent", [("E", 100.0, 1000.0), ("r1", 0.02, 0.09)]);
-    on_curve(&found, ThresholdKind::Transcritical, |state, [effort, r1]| {
-        if (effort - 800.0).abs() < 1e-6 { [800.0, r1] } else { [1e4 * r1, state[0] * 0.0 + effort * 1e-4] }
+    on_curve(&found, ThresholdKind::Transcritical, |_, [effort, r1]| {
+        if (effort - 800.0).abs() < 1e-6 { [800.0, r1] } else { [1e4 * r1, r1] }
     });
     assert_eq!(found.regions.len(), 4, "{:?}", found.regions);
 }

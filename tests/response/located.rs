@@ -101,7 +101,7 @@ fn crossings() {
 
 #[test]
 fn pairs() {
-    // x = 1 + X, y = 1 + Y: X′ = c X − 2 Y + k X³, Y′ = 2 X + c Y, turned by a state that moves along with c.
+    // x = 1 + X, y = 1 + Y: X′ = (c − 3) X − 2 Y + k X³, Y′ = 2 X + (c − 3) Y.
     let rows =
         |k: &str| model(&[&format!("(c - 3)*(x - 1) - 2*(y - 1) + {k}*(x - 1)^3"), "2*(x - 1) + (c - 3)*(y - 1)"]);
     let around: Around<'_> = [(&[1.01, 0.98], 2.8), (&[0.99, 1.03], 3.1)];
@@ -117,8 +117,8 @@ fn pairs() {
     let around: Around<'_> = [(&[1.01, 0.98, 1.0], 2.8), (&[0.99, 1.03, 1.0], 3.1)];
     let found = check(&unstable, &Sign::Pair(None), around, ThresholdKind::Hopf, 3.0, &[1.0, 1.0, 1.0]);
     assert_eq!(found.criticality, None);
-    // Two real eigenvalues of sum 0, with complex ones close by in the bracket: 2 X′ = trace, X² < 0.
-    let neutral = model(&["(c - 3)*(x - 1) + (y - 1)", "(0.01 - (c - 3.05)^2*0 )*(x - 1) + (c - 3)*(y - 1)"]);
+    // c − 3 ± √(0.5 c − 1.49): a pair below c = 2.98, and two real eigenvalues of sum 0 at c = 3.
+    let neutral = model(&["(c - 3)*(x - 1) + (y - 1)", "(0.5*c - 1.49)*(x - 1) + (c - 3)*(y - 1)"]);
     assert_eq!(located(&neutral, &[0, 1], &Sign::Pair(None), [(&[1.0, 1.0], 2.9), (&[1.0, 1.0], 3.1)]), None);
     // Rosenzweig & MacArthur's cycles at K = 3, the prey in millions, the predator in millionths.
     let mut scaled = model(&["x*(1 - x/(1000000*c)) - 1000000*x*y/(1 + x/1000000)", "y*(x/(1000000 + x) - 0.5)"]);

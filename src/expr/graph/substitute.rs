@@ -32,12 +32,11 @@ impl Graph {
     pub fn replaced(&mut self, nodes: &[NodeId], changes: &[(NodeId, NodeId)]) -> Vec<NodeId> {
         let mut new: HashMap<NodeId, NodeId> = HashMap::new();
         for node in self.reachable(nodes) {
-            let rebuilt = match changes.iter().find(|(what, _)| *what == node) {
-                Some((_, by)) => new.get(by).copied().unwrap_or(*by),
-                None => {
-                    let operation = self.operation(node);
-                    self.rebuild(operation.map(|operand| new[&operand]))
-                }
+            let rebuilt = if let Some((_, by)) = changes.iter().find(|(what, _)| *what == node) {
+                new.get(by).copied().unwrap_or(*by)
+            } else {
+                let operation = self.operation(node);
+                self.rebuild(operation.map(|operand| new[&operand]))
             };
             new.insert(node, rebuilt);
         }

@@ -12,7 +12,7 @@ use crate::analysis::response::defining::newton::{Linear, Newton, Root};
 use crate::analysis::response::defining::{Defining, Matrix};
 use crate::analysis::response::equations::{Equations, Face};
 use crate::analysis::response::locate::describe::Describer;
-use crate::analysis::response::locate::judge::{along, kernel_at};
+use crate::analysis::response::locate::judge::{Null, along, kernel_at};
 
 use crate::expr::tape::Tape;
 
@@ -49,9 +49,8 @@ struct Signs {
 
 impl Corners {
     pub(super) fn new(equations: &mut Equations, face: &Face) -> Self {
-        let rows = equations.rows.clone();
         let is_map = equations.step.is_some();
-        let matrix = if is_map { None } else { Matrix::of_rows(equations, &rows, face) };
+        let matrix = if is_map { None } else { Matrix::of_rows(equations, face) };
         Self {
             cusp: Defining::cusp(equations, face),
             double: matrix.map(|matrix| Defining::pair(equations, face, &matrix)),
@@ -73,7 +72,7 @@ impl Corners {
             let sizes = tracer.sizes(&place.at);
             let now = signs(&tape, values, face, &sizes, place, before.as_ref().map(|(signs, _)| signs));
             if let (Some(now), Some((then, last))) = (&now, &before) {
-                let length = tracer.length(last, place);
+                let length = super::trace::length(last, place);
                 // As near as the curve itself leads, for these systems have narrow surroundings.
                 let mut nearest = |number: &dyn Fn(&Signs) -> f64| {
                     let mut at =
@@ -100,7 +99,7 @@ impl Corners {
         let mut start = self.cusp.starts(&equations.values, &free, &sizes).into_iter().next()?;
         let frame = self.cusp.frame(&equations.values, &mut start, &sizes)?;
         let root = Newton::new(&self.cusp.tape, &equations.values).root(&start, &frame.scale, &frame.linear)?;
-        corner(ThresholdKind::Cusp, &self.cusp, root, ends, &frame.scale)
+        corner(ThresholdKind::Cusp, &self.cusp, &root, ends, &frame.scale)
     }
 
     /// The double eigenvalue: from v with A v = w and w in the kernel of A.
@@ -135,7 +134,7 @@ impl Corners {
         let linear: Vec<Linear> = frame.linear.iter().cloned().chain([Linear { row, value: 0.0 }]).collect();
         let root = Newton::new(&system.tape, &equations.values).root(&start, &frame.scale, &linear)?;
         let unknowns = root.at.clone();
-        let corner = corner(ThresholdKind::BogdanovTakens, system, root, ends, &frame.scale)?;
+        let corner = corner(ThresholdKind::BogdanovTakens, system, &root, ends, &frame.scale)?;
         Some(Corner { pair: Some(unknowns), ..corner })
     }
 }
@@ -161,7 +160,7 @@ pub(super) fn on_hopf(
         if !changes(a, b) {
             continue;
         }
-        let length = tracer.length(&places[k - 1], &places[k]);
+        let length = super::trace::length(&places[k - 1], &places[k]);
         let (_, place) = tracer.between(&places[k - 1], length, &mut coefficient);
         let Some(place) = place else { continue };
         found.push(Corner {
@@ -183,12 +182,14 @@ fn signs(
     before: Option<&Signs>,
 ) -> Option<Signs> {
     let free = &place.at[..sizes.moving.len() + sizes.controls.len()];
-    let ([mut right, mut left], rows, _) = kernel_at(tape, values, sizes, free)?;
+    let Null { mut right, mut left, rows, .. } = kernel_at(tape, values, sizes, free)?;
     if let Some(before) = before {
         for (vector, last) in [(&mut right, &before.right), (&mut left, &before.left)] {
             let along: f64 = vector.iter().zip(last).map(|(a, b)| a * b).sum();
             if along < 0.0 {
-                vector.iter_mut().for_each(|x| *x = -*x);
+                for x in vector.iter_mut() {
+                    *x = -*x;
+                }
             }
         }
     }
@@ -225,7 +226,7 @@ fn generalised(matrix: &[f64], right: &[f64], left: &[f64]) -> Option<Vec<f64>> 
 }
 
 /// A root as a point, if it is near the step on which it was looked for.
-fn corner(kind: ThresholdKind, system: &Defining, root: Root, [a, b]: [&Place; 2], scale: &[f64]) -> Option<Corner> {
+fn corner(kind: ThresholdKind, system: &Defining, root: &Root, [a, b]: [&Place; 2], scale: &[f64]) -> Option<Corner> {
     let [m, _] = system.counts;
     let free = system.free();
     let length = (0..free).fold(0.0f64, |most, j| most.max(((b.at[j] - a.at[j]) / scale[j]).abs()));

@@ -71,7 +71,8 @@ struct Traced {
 /// define them (Kuznetsov 2004, ch. 10); what regions hold is certified where the region says that it is complete.
 pub fn chart(subject: &Subject<'_>, controls: [Control; 2], list: &[Equilibrium], budget: &Budget<'_>) -> Chart {
     let mut work = Work::new(subject, controls, budget);
-    if controls.iter().any(|control| !(control.from < control.to)) {
+    let has_range = |control: &Control| control.from < control.to;
+    if !controls.iter().all(has_range) {
         return Chart {
             controls,
             curves: Vec::new(),

@@ -166,7 +166,9 @@ impl<'s> Searcher<'s> {
         let mut cells = vec![None; owner.len()];
         for members in members(owner) {
             let Some(region) = self.at(deepest(owner, &members), budget).cloned() else { continue };
-            members.iter().for_each(|&cell| cells[cell] = Some(regions.len()));
+            for cell in members {
+                cells[cell] = Some(regions.len());
+            }
             regions.push(region);
         }
         let given = (0..GIVEN[0] * GIVEN[1]).map(|cell| {
@@ -306,17 +308,15 @@ impl Cells {
             let (low, high) = (a[other].min(b[other]), a[other].max(b[other]));
             let first = low.ceil().max(0.0);
             let last = (high.ceil() - 1.0).min(GRID[other] as f64 - 1.0);
-            let mut line = first;
-            while line <= last {
-                let share = (line - a[other]) / (b[other] - a[other]);
-                let at = (a[k] + share * (b[k] - a[k])).floor();
-                if at >= 0.0 && at + 1.0 < GRID[k] as f64 {
-                    let mut place = [0usize; 2];
-                    place[k] = at as usize;
-                    place[other] = line as usize;
+            for line in (0..GRID[other]).filter(|&line| (first..=last).contains(&(line as f64))) {
+                let share = (line as f64 - a[other]) / (b[other] - a[other]);
+                let at = a[k] + share * (b[k] - a[k]);
+                // The middle before it.
+                if let Some(before) = (0..GRID[k] - 1).find(|&i| (i as f64..(i + 1) as f64).contains(&at)) {
+                    let mut place = [line; 2];
+                    place[k] = before;
                     self.cut[place[1] * GRID[0] + place[0]][k] = true;
                 }
-                line += 1.0;
             }
         }
     }

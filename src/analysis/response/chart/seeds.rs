@@ -36,13 +36,12 @@ pub(super) fn along(
     let plan = Plan { values, ..subject.plan.clone() };
     let mut line = Subject { plan: &plan, ..subject.clone() };
     let found;
-    let list = match list {
-        Some(list) => list,
-        None => {
-            let Subject { graph, balance, sides, .. } = &mut line;
-            found = all(graph, &Problem { rows: balance, values: &plan.values, sides }, budget).list;
-            &found
-        }
+    let list = if let Some(list) = list {
+        list
+    } else {
+        let Subject { graph, balance, sides, .. } = &mut line;
+        found = all(graph, &Problem { rows: balance, values: &plan.values, sides }, budget).list;
+        &found
     };
     let control = Control { present: through[which], ..controls[which] };
     // The branches are wanted and no proof that they are all.

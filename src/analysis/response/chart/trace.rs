@@ -42,7 +42,9 @@ pub(super) struct Place {
 impl Place {
     /// The same point on the way back.
     pub(super) fn reversed(mut self) -> Self {
-        self.tangent.iter_mut().for_each(|t| *t = -*t);
+        for t in &mut self.tangent {
+            *t = -*t;
+        }
         self
     }
 }
@@ -149,7 +151,7 @@ impl<'t> Tracer<'t> {
     pub(super) fn follow(&mut self, start: &Place, forwards: bool) -> (Vec<Place>, End) {
         let mut here = start.clone();
         if !forwards {
-            here.tangent.iter_mut().for_each(|t| *t = -*t);
+            here = here.reversed();
         }
         let first = here.clone();
         let mut step = FIRST_STEP;
@@ -312,12 +314,12 @@ impl<'t> Tracer<'t> {
             None => (step, None),
         }
     }
+}
 
-    /// The length along the tangent of one point to another.
-    pub(super) fn length(&self, here: &Place, next: &Place) -> f64 {
-        let parts = here.at.iter().zip(&next.at).zip(&here.frame.scale).zip(&here.tangent);
-        parts.map(|(((a, b), scale), t)| t * (b - a) / scale).sum()
-    }
+/// The length along the tangent of one point to another.
+pub(super) fn length(here: &Place, next: &Place) -> f64 {
+    let parts = here.at.iter().zip(&next.at).zip(&here.frame.scale).zip(&here.tangent);
+    parts.map(|(((a, b), scale), t)| t * (b - a) / scale).sum()
 }
 
 /// Above 0 where a pair's system has a pair: ω², for a map 1 − cos² θ.

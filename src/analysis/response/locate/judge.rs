@@ -107,19 +107,31 @@ fn face_slopes(tape: &Tape, values: &[f64], free: &[f64]) -> Option<(Vec<f64>, V
     Some((by_species, by_controls))
 }
 
-/// Right and left vector of the kernel of Fₓ in the sizes of species and rows, those sizes of rows, and F's slopes by the
-/// controls.
+/// The kernel of Fₓ at a point.
+pub(in crate::analysis::response) struct Null {
+    /// Right vector, in the sizes of species.
+    pub(in crate::analysis::response) right: Vec<f64>,
+    /// Left vector, in the sizes of rows.
+    pub(in crate::analysis::response) left: Vec<f64>,
+    /// Those.
+    pub(in crate::analysis::response) rows: Vec<f64>,
+    /// F's slopes by every control, row by row.
+    by_controls: Vec<f64>,
+}
+
+/// The kernel of Fₓ at a point where it is nearly singular.
 pub(in crate::analysis::response) fn kernel_at(
     tape: &Tape,
     values: &[f64],
     sizes: &Sizes,
     free: &[f64],
-) -> Option<([Vec<f64>; 2], Vec<f64>, Vec<f64>)> {
+) -> Option<Null> {
     let m = tape.outputs();
     let (by_species, by_controls) = face_slopes(tape, values, free)?;
     let rows = row_sizes(&by_species, &sizes.moving);
     let scaled: Vec<f64> = (0..m * m).map(|k| by_species[k] * sizes.moving[k % m] / rows[k / m]).collect();
-    Some((kernel(&scaled, m)?, rows, by_controls))
+    let [right, left] = kernel(&scaled, m)?;
+    Some(Null { right, left, rows, by_controls })
 }
 
 /// Whether the control's direction does turn: at a crossing the control does not push the state along the left vector.
@@ -127,7 +139,7 @@ fn is_fold(equations: &Equations, face: &Face, sizes: &Sizes, root: &Root) -> bo
     let free = face.moving.len() + equations.controls.len();
     let tape = equations.tape(face);
     let found = kernel_at(&tape, &equations.values, sizes, &root.at[..free]);
-    let Some(([_, left], rows, by_controls)) = found else { return false };
+    let Some(Null { left, rows, by_controls, .. }) = found else { return false };
     let k = equations.controls.len();
     let push = |control: usize| {
         let push: Vec<f64> = (0..rows.len()).map(|i| by_controls[i * k + control] / rows[i]).collect();
@@ -149,7 +161,7 @@ fn crossing(
     debug_assert!(system.shape == Shape::Crossing, "{:?}", system.shape);
     let (m, free) = (face.moving.len(), system.free());
     let (tape, values) = (equations.tape(face), &equations.values);
-    let ([right, left], rows, _) = kernel_at(&tape, values, sizes, &root.at[..free])?;
+    let Null { right, left, rows, .. } = kernel_at(&tape, values, sizes, &root.at[..free])?;
     let beta = root.at[free + m];
     if (0..m).any(|i| (beta * root.at[free + i]).abs() > IMPERFECT * rows[i]) {
         return None;
