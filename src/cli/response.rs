@@ -172,7 +172,7 @@ impl Run<'_> {
         let (failed, exit) = ended(table.scenes, table.interrupted, self.asked.work.strict);
         let mut remarks = remarks(&failed, &self.original.model.sources, self.screen.color_remarks);
         for said in &whole.undefined {
-            remarks.push_str(&format!("error: {}\n", cleanse(said)));
+            remarks += &["error: ", cleanse(said).as_ref(), "\n"].concat();
         }
         let exit = match exit {
             Exit::Done | Exit::Unproved if !whole.undefined.is_empty() => Exit::Fault,

@@ -57,13 +57,13 @@ pub fn charted(
     budget: &Budget<'_>,
 ) -> Option<Chart> {
     let solved = scene.outcome.as_ref().ok()?;
-    let mut subject = prepared.subject(model, scene.scenario).ok()?;
+    let subject = prepared.subject(model, scene.scenario).ok()?;
     let [Some(across), Some(upwards)] = varied.map(|(parameter, [from, to])| {
         Some(Control { parameter, from, to, present: *solved.values.get(parameter.0)? })
     }) else {
         return None;
     };
-    Some(chart(&mut subject, [across, upwards], &solved.equilibria.list, budget))
+    Some(chart(&subject, [across, upwards], &solved.equilibria.list, budget))
 }
 
 /// Names the equilibria of scenarios in the order given, by following them from one to the next until `stop` says so.

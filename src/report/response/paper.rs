@@ -101,7 +101,7 @@ fn one(table: &Table<'_>, part: &Part<'_>, page: &Page) -> String {
             lines.replacen(word, &ink.paint(word, page), 1)
         }
         Part::Grid(sheet) => grid(&sheet.heads, &sheet.rows, page),
-        Part::Drawing(lines) => lines.iter().map(|line| format!("{line}\n")).collect(),
+        Part::Drawing(lines) => lines.join("\n") + "\n",
         Part::Meaning(word, meaning) => page.paragraph(&format!("{word}:"), meaning, MEANINGS),
     }
 }

@@ -21,8 +21,8 @@ pub struct Segment {
 /// The parts of a branch, from its first point on.
 ///
 /// A threshold's point ends one part and begins the next; its own type is of neither. So does a lone critical point, as at
-/// an end of the range that happens to be a threshold. Between parts that differ without a
-/// threshold the last point of the first is the border.
+/// an end of the range that happens to be a threshold. Between parts that differ without a threshold the last point of the
+/// first is the border.
 pub fn segments(branch: &Branch) -> Vec<Segment> {
     let points = &branch.points;
     let mut all: Vec<Segment> = Vec::new();
@@ -35,19 +35,10 @@ pub fn segments(branch: &Branch) -> Vec<Segment> {
             is_open = false;
             continue;
         }
-        match all.last_mut().filter(|last| is_open && last.is_like(point)) {
-            Some(last) => last.extend(place, point, Some(point.kind)),
-            None => {
-                let start = place.saturating_sub(1);
-                let from = points.get(start).filter(|_| place > 0).map_or(point.at, |before| before.at);
-                all.push(Segment {
-                    ends: [from, point.at],
-                    points: [start, place],
-                    kinds: vec![point.kind],
-                    stable: point.stable,
-                    feasible: point.feasible,
-                });
-            }
+        if let Some(last) = all.last_mut().filter(|last| is_open && last.is_like(point)) {
+            last.extend(place, point, Some(&point.kind));
+        } else {
+            all.push(Segment::new(points, place));
         }
         is_open = true;
     }
@@ -65,12 +56,23 @@ impl Segment {
         self.stable == point.stable && self.feasible == point.feasible
     }
 
-    fn extend(&mut self, place: usize, point: &Point, kind: Option<Option<Kind>>) {
+    /// A part that a point is of, from the point before it on.
+    fn new(points: &[Point], place: usize) -> Self {
+        let (start, point) = (place.saturating_sub(1), &points[place]);
+        Self {
+            ends: [points[start].at, point.at],
+            points: [start, place],
+            kinds: vec![point.kind],
+            stable: point.stable,
+            feasible: point.feasible,
+        }
+    }
+
+    /// With one more point, which need not be of its own type.
+    fn extend(&mut self, place: usize, point: &Point, kind: Option<&Option<Kind>>) {
         self.ends[1] = point.at;
         self.points[1] = place;
-        if let Some(kind) = kind.filter(|kind| !self.kinds.contains(kind)) {
-            self.kinds.push(kind);
-        }
+        self.kinds.extend(kind.filter(|kind| !self.kinds.contains(kind)).copied());
     }
 }
 
