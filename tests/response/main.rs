@@ -4,5 +4,7 @@
 mod common;
 
 mod branches;
+mod chart;
+mod located;
 mod setting;
 mod thresholds;

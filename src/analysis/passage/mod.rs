@@ -28,6 +28,7 @@ pub(in crate::analysis) use curve::solve;
 pub(in crate::analysis) use face::restricted;
 use face::{Face, Rows};
 pub use identity::{Identities, identify};
+pub(in crate::analysis) use locate::crossing;
 use walk::{Course, End, Ground, Obstacle, Walk};
 
 /// What becomes of an equilibrium on the way to another scenario. Shares of the way are counted from the first scenario of

@@ -5,6 +5,7 @@
 //! that defines them (Kuznetsov 2004, ch. 10), and only the count of equilibria between stations may be proved. `equations`
 //! has a scenario's rows with controls as inputs; start there for anything that moves a parameter.
 
+pub mod chart;
 mod cover;
 mod curve;
 mod defining;
@@ -21,6 +22,7 @@ mod types;
 mod undefined;
 mod walk;
 
+pub use chart::chart;
 pub use respond::respond;
 
 use nalgebra::Complex;
