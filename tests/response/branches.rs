@@ -133,7 +133,7 @@ fn one_species_in_closed_form() {
 }
 
 /// Every published threshold of one parameter is on the picture around it, as a threshold of its kind, whatever branch it
-/// lies on.
+/// lies on, but for one whose state the box does not hold.
 #[test]
 fn published_thresholds_are_on_the_picture() {
     let mut missed = Vec::new();
@@ -144,6 +144,9 @@ fn published_thresholds_are_on_the_picture() {
             let mut subject = subject(&mut read);
             let reach = 0.4 * published.at.abs();
             let control = control(&subject, published.parameter, published.at - reach, published.at + reach);
+            if published.state.iter().zip(&subject.sides).any(|(x, side)| !(side[0]..=side[1]).contains(&x)) {
+                continue;
+            }
             let list = found(&mut subject);
             let response = respond(&mut subject, &control, &list, &budget(), &mut |_| ());
             let is_it = |found: &Threshold| {
@@ -155,7 +158,10 @@ fn published_thresholds_are_on_the_picture() {
             count += 1;
             if !response.thresholds.iter().any(is_it) {
                 let all: Vec<_> = response.thresholds.iter().map(|t| (t.kind, t.at, t.state.clone())).collect();
-                missed.push(format!("{} {} {} = {} at {:?}: {all:?}", case.id, published.kind, published.parameter, published.at, published.state));
+                missed.push(format!(
+                    "{} {} {} = {} at {:?}: {all:?}",
+                    case.id, published.kind, published.parameter, published.at, published.state
+                ));
             }
         }
     }

@@ -106,6 +106,13 @@ impl<'p> Curve<'p> {
         self.scale.len()
     }
 
+    /// A direction in the units of the coordinates as a unit vector in scaled ones.
+    pub(super) fn unit(&self, direction: &[f64]) -> Vec<f64> {
+        let mut unit: Vec<f64> = direction.iter().zip(&self.scale).map(|(part, scale)| part / scale).collect();
+        normalise(&mut unit);
+        unit
+    }
+
     /// Evaluates rows and slopes; whether all are defined and finite.
     pub(super) fn evaluate(&mut self, point: &[f64]) -> bool {
         let n = self.order();

@@ -11,6 +11,7 @@ use std::rc::Rc;
 
 use super::curve::{Curve, Sample};
 use super::equations::Equations;
+use super::events;
 use super::events::Change;
 use super::locate::Locator;
 use super::locate::describe::Describer;
@@ -23,6 +24,10 @@ const MOST_BRANCHES: usize = 400;
 /// What lies between two meetings of one threshold is one place with it when it is this share of an abundance, and of the
 /// range, off.
 const ONE_PLACE: f64 = 1e-3;
+/// How far from a threshold a walk sets out, in scaled coordinates,
+const ASIDE: f64 = 1.37e-3;
+/// in which an abundance is measured by itself, or by this share of the box.
+const LEAST_SCALE: f64 = 1e-3;
 /// Pieces that one branch runs through at most, each way.
 const MOST_LEGS: usize = 60;
 /// An abundance this share of the box below 0, or beyond its sides, is there by rounding.
@@ -108,6 +113,7 @@ impl<'e> Picture<'e> {
         if start.across.is_some() && self.passes(&present, &self.whole(&piece, &sample.at), sample.control()) {
             return true;
         }
+        let sample = self.aside(&piece, &sample).unwrap_or(sample);
         let (mut points, end) = self.go(piece.clone(), sample.clone(), Some(sample.clone()));
         let mut ends = [end, end];
         let mut all = Vec::new();
@@ -131,6 +137,35 @@ impl<'e> Picture<'e> {
         let peaks = (0..n).map(|i| all.iter().fold(0.0f64, |most, point| most.max(point.state[i].abs()))).collect();
         self.branches.push(Followed { present, points: all, ends, peaks });
         true
+    }
+
+    /// A point a little further on, where one lies on a threshold: what happens there is seen on the way back over it.
+    fn aside(&mut self, piece: &Piece, sample: &Sample) -> Option<Sample> {
+        if sample.typed.unstable.is_some() {
+            return None;
+        }
+        let values = self.values.clone();
+        let mut curve = self.curve(piece, &values, &sample.at);
+        let unit = curve.unit(&sample.direction);
+        [ASIDE, -ASIDE].into_iter().find_map(|step| {
+            let mut at: Vec<f64> =
+                sample.at.iter().zip(&unit).zip(&curve.scale).map(|((x, t), s)| x + step * t * s).collect();
+            let corrected = curve.correct(&mut at, &unit)?;
+            let mut beside = Sample { at, ..Sample::default() };
+            curve.describe(&mut beside, corrected.orientation);
+            let is_inside = (self.control.from..=self.control.to).contains(&beside.control());
+            let is_clear = beside.typed.unstable.is_some() && events::kinks(piece, &beside).next().is_none();
+            (is_inside && is_clear).then_some(beside)
+        })
+    }
+
+    /// A piece's curve, scaled for a point.
+    pub(super) fn curve<'p>(&self, piece: &'p Piece, values: &'p [f64], at: &[f64]) -> Curve<'p> {
+        let mut curve = Curve::new(piece, values, self.width(), self.is_map());
+        for (place, &i) in piece.moving.iter().enumerate() {
+            curve.scale[place] = at[place].abs().max(LEAST_SCALE * self.equations.sides[i][1].abs());
+        }
+        curve
     }
 
     /// Leaves of a threshold that was met several times in one place, as where branches cross, one point: what lies between
@@ -188,10 +223,7 @@ impl<'e> Picture<'e> {
         let piece = self.pieces.at(self.equations, present, &beside, start.control)?;
         let at: Vec<f64> = piece.moving.iter().map(|&i| start.state[i]).chain([start.control]).collect();
         let values = self.values.clone();
-        let mut curve = Curve::new(&piece, &values, self.width(), self.is_map());
-        for (place, &i) in piece.moving.iter().enumerate() {
-            curve.scale[place] = start.state[i].abs().max(1e-3 * self.equations.sides[i][1].abs());
-        }
+        let mut curve = self.curve(&piece, &values, &at);
         let sample = match &start.across {
             None => {
                 let sample = curve.settled(&at)?;

@@ -197,11 +197,7 @@ pub(super) fn over_kink(
 /// A point on a piece in the direction that leads to its own side of a kink, and another kink on whose wrong side that is.
 fn directed(picture: &mut Picture<'_>, next: &Piece, k: usize, last: &Sample) -> Option<(Sample, Option<usize>)> {
     let values = picture.equations.values.clone();
-    let width = picture.control.to - picture.control.from;
-    let mut curve = Curve::new(next, &values, width, picture.equations.step.is_some());
-    for (place, &i) in next.moving.iter().enumerate() {
-        curve.scale[place] = last.at[place].abs().max(1e-3 * picture.equations.sides[i][1].abs());
-    }
+    let mut curve = picture.curve(next, &values, &last.at);
     let mut start = curve.settled(&last.at)?;
     if distance(&start.at, &last.at, &curve.scale) > MEETS {
         return None;
@@ -211,7 +207,7 @@ fn directed(picture: &mut Picture<'_>, next: &Piece, k: usize, last: &Sample) ->
     for sign in [1.0, -1.0] {
         let mut probe: Vec<f64> =
             start.at.iter().zip(&start.direction).map(|(x, part)| x + sign * PROBE * part).collect();
-        let border = unit(&start.direction, &curve.scale);
+        let border = curve.unit(&start.direction);
         let Some(corrected) = curve.correct(&mut probe, &border) else { continue };
         let mut sample = Sample { at: probe, ..Sample::default() };
         curve.describe(&mut sample, corrected.orientation);
@@ -230,10 +226,4 @@ fn directed(picture: &mut Picture<'_>, next: &Piece, k: usize, last: &Sample) ->
         }
     }
     best
-}
-
-fn unit(direction: &[f64], scale: &[f64]) -> Vec<f64> {
-    let mut unit: Vec<f64> = direction.iter().zip(scale).map(|(part, scale)| part / scale).collect();
-    normalise(&mut unit);
-    unit
 }
