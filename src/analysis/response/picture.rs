@@ -11,6 +11,7 @@ use std::rc::Rc;
 
 use super::curve::{Curve, Sample};
 use super::equations::Equations;
+use super::events;
 use super::events::Change;
 use super::locate::Locator;
 use super::locate::describe::Describer;
@@ -20,6 +21,13 @@ use super::{Control, Ending, Point, Threshold};
 
 /// Branches and starts that are followed at most.
 const MOST_BRANCHES: usize = 400;
+/// What lies between two meetings of one threshold is one place with it when it is this share of an abundance, and of the
+/// range, off.
+const ONE_PLACE: f64 = 1e-3;
+/// How far from a threshold a walk sets out, in scaled coordinates,
+const ASIDE: f64 = 1.37e-3;
+/// in which an abundance is measured by itself, or by this share of the box.
+const LEAST_SCALE: f64 = 1e-3;
 /// Pieces that one branch runs through at most, each way.
 const MOST_LEGS: usize = 60;
 /// An abundance this share of the box below 0, or beyond its sides, is there by rounding.
@@ -102,9 +110,10 @@ impl<'e> Picture<'e> {
             return true;
         }
         let Some((piece, sample)) = self.set_out(start, &present) else { return false };
-        if start.across.is_some() && self.passes(&present, &self.whole(&piece, &sample.at), self.control_of(&sample)) {
+        if start.across.is_some() && self.passes(&present, &self.whole(&piece, &sample.at), sample.control()) {
             return true;
         }
+        let sample = self.aside(&piece, &sample).unwrap_or(sample);
         let (mut points, end) = self.go(piece.clone(), sample.clone(), Some(sample.clone()));
         let mut ends = [end, end];
         let mut all = Vec::new();
@@ -123,18 +132,69 @@ impl<'e> Picture<'e> {
         if end == Ending::Closed {
             all.push(first);
         }
+        self.gather(&mut all);
         let n = self.equations.species;
         let peaks = (0..n).map(|i| all.iter().fold(0.0f64, |most, point| most.max(point.state[i].abs()))).collect();
         self.branches.push(Followed { present, points: all, ends, peaks });
         true
     }
 
-    fn width(&self) -> f64 {
-        self.control.to - self.control.from
+    /// A point a little further on, where one lies on a threshold: what happens there is seen on the way back over it.
+    fn aside(&mut self, piece: &Piece, sample: &Sample) -> Option<Sample> {
+        if sample.typed.unstable.is_some() {
+            return None;
+        }
+        let values = self.values.clone();
+        let mut curve = self.curve(piece, &values, &sample.at);
+        let unit = curve.unit(&sample.direction);
+        [ASIDE, -ASIDE].into_iter().find_map(|step| {
+            let mut at: Vec<f64> =
+                sample.at.iter().zip(&unit).zip(&curve.scale).map(|((x, t), s)| x + step * t * s).collect();
+            let corrected = curve.correct(&mut at, &unit)?;
+            let mut beside = Sample { at, ..Sample::default() };
+            curve.describe(&mut beside, corrected.orientation);
+            let is_inside = (self.control.from..=self.control.to).contains(&beside.control());
+            let is_clear = beside.typed.unstable.is_some() && events::kinks(piece, &beside).next().is_none();
+            (is_inside && is_clear).then_some(beside)
+        })
     }
 
-    fn control_of(&self, sample: &Sample) -> f64 {
-        sample.at[sample.at.len() - 1]
+    /// A piece's curve, scaled for a point.
+    pub(super) fn curve<'p>(&self, piece: &'p Piece, values: &'p [f64], at: &[f64]) -> Curve<'p> {
+        let mut curve = Curve::new(piece, values, self.width(), self.is_map());
+        for (place, &i) in piece.moving.iter().enumerate() {
+            curve.scale[place] = at[place].abs().max(LEAST_SCALE * self.equations.sides[i][1].abs());
+        }
+        curve
+    }
+
+    /// Leaves of a threshold that was met several times in one place, as where branches cross, one point: what lies between
+    /// is too near to it to be told from it.
+    fn gather(&self, points: &mut Vec<Point>) {
+        let sides = &self.equations.sides;
+        let is_one = |a: &Point, b: &Point| {
+            let near = |i: usize| {
+                (a.state[i] - b.state[i]).abs() <= ONE_PLACE * a.state[i].abs().max(1e-3 * sides[i][1].abs())
+            };
+            (a.at - b.at).abs() <= ONE_PLACE * self.width() && (0..a.state.len()).all(near)
+        };
+        let mut kept: Vec<Point> = Vec::with_capacity(points.len());
+        for point in points.drain(..) {
+            let last = kept.iter().rposition(|known| known.threshold.is_some());
+            if let Some(last) = last
+                && point.threshold.is_some()
+                && kept[last].threshold == point.threshold
+                && kept[last..].iter().all(|between| is_one(between, &point))
+            {
+                kept.truncate(last);
+            }
+            kept.push(point);
+        }
+        *points = kept;
+    }
+
+    fn width(&self) -> f64 {
+        self.control.to - self.control.from
     }
 
     fn is_map(&self) -> bool {
@@ -163,10 +223,7 @@ impl<'e> Picture<'e> {
         let piece = self.pieces.at(self.equations, present, &beside, start.control)?;
         let at: Vec<f64> = piece.moving.iter().map(|&i| start.state[i]).chain([start.control]).collect();
         let values = self.values.clone();
-        let mut curve = Curve::new(&piece, &values, self.width(), self.is_map());
-        for (place, &i) in piece.moving.iter().enumerate() {
-            curve.scale[place] = start.state[i].abs().max(1e-3 * self.equations.sides[i][1].abs());
-        }
+        let mut curve = self.curve(&piece, &values, &at);
         let sample = match &start.across {
             None => {
                 let sample = curve.settled(&at)?;
@@ -247,7 +304,7 @@ impl<'e> Picture<'e> {
         let taking =
             |place: &Option<usize>| place.map(|place| sample.beside[place]).filter(|amount| amount.is_finite());
         Point {
-            at: self.control_of(sample),
+            at: sample.control(),
             kind: sample.typed.light.map(|light| light.kind),
             stable: sample.typed.light.and_then(|light| light.stable),
             leading: sample.typed.leading,

@@ -12,6 +12,9 @@ use super::events::Change;
 use inspect::{DEEPEST, TIGHT};
 use nalgebra::Complex;
 
+/// A step that ends on a threshold is shortened to this share, so often on one walk at most.
+const EVADED: f64 = 0.83;
+const EVASIONS: usize = 20;
 /// Steps of a walk.
 const MOST_STEPS: usize = 6000;
 /// Length of the first step: share of each abundance, and of the range.
@@ -98,6 +101,8 @@ pub(super) struct Walk<'w, 'p> {
     /// Where the walk of the whole branch began, if it may come back there.
     home: Option<Sample>,
     travelled: f64,
+    /// Steps that were shortened in order not to end on a threshold.
+    evasions: usize,
 }
 
 impl<'w, 'p> Walk<'w, 'p> {
@@ -117,6 +122,7 @@ impl<'w, 'p> Walk<'w, 'p> {
             nodes: Vec::new(),
             home,
             travelled: 0.0,
+            evasions: 0,
         };
         walk.rescale();
         walk
@@ -135,6 +141,11 @@ impl<'w, 'p> Walk<'w, 'p> {
             }
             let tried = self.step;
             let end = match self.attempt(tried) {
+                Ok(false) if self.lands_on_the_border() => {
+                    self.evasions += 1;
+                    self.step = EVADED * tried.min(self.most_shown());
+                    None
+                }
                 Ok(has_landed) => self.take(has_landed),
                 Err(Refusal::Crossing) if tried <= CROSSES => self.take(false),
                 Err(_) => {
@@ -147,6 +158,13 @@ impl<'w, 'p> Walk<'w, 'p> {
             }
         }
         End::Lost
+    }
+
+    /// Whether a step ends where eigenvalues are neither here nor there, though they were clear before: what happens there
+    /// is seen from points on either side. Where they stay so there is nothing to evade.
+    fn lands_on_the_border(&self) -> bool {
+        let [here, next] = [&self.here, &self.next].map(|sample| sample.typed.unstable);
+        here.is_some() && next.is_none() && self.evasions < EVASIONS
     }
 
     fn m(&self) -> usize {
