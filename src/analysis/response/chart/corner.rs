@@ -21,6 +21,9 @@ use super::trace::{Place, Tracer};
 /// A root further than this many of the step's lengths from it is another point.
 const NEARBY: f64 = 3.0;
 
+/// An abundance this share of its size is 0.
+const ABSENT: f64 = 1e-6;
+
 /// A point that was located.
 #[derive(Clone, Debug)]
 pub(super) struct Corner {
@@ -133,6 +136,11 @@ impl Corners {
         *row.last_mut()? = 1.0;
         let linear: Vec<Linear> = frame.linear.iter().cloned().chain([Linear { row, value: 0.0 }]).collect();
         let root = Newton::new(&system.tape, &equations.values).root(&start, &frame.scale, &linear)?;
+        // With somebody absent the two eigenvalues are 0 apart from each other, on two curves that meet.
+        let absent = |i: usize| root.at[i].abs() <= ABSENT * sizes.moving[i];
+        if (0..system.counts[0]).any(absent) {
+            return None;
+        }
         let unknowns = root.at.clone();
         let corner = corner(ThresholdKind::BogdanovTakens, system, &root, ends, &frame.scale)?;
         Some(Corner { pair: Some(unknowns), ..corner })
@@ -195,10 +203,13 @@ fn signs(
     }
     let [second, _] = along(tape, values, &right, sizes, free)?;
     let m = rows.len();
-    let through = |i: usize| if face.is_divided[i] { free[i] } else { 1.0 };
+    // Multiplied by all the abundances of divided rows: the same sign, and no division where one goes to 0.
+    let factor = |i: usize| if face.is_divided[i] { free[i] / sizes.moving[i] } else { 1.0 };
+    let unit = |i: usize| if face.is_divided[i] { 1.0 } else { sizes.moving[i] };
+    let others = |i: usize| (0..m).filter(|&j| j != i).map(factor).product::<f64>();
     Some(Signs {
         bend: (0..m).map(|i| left[i] * second[i] / rows[i]).sum(),
-        double: (0..m).map(|i| left[i] / rows[i] * right[i] * sizes.moving[i] / through(i)).sum(),
+        double: (0..m).map(|i| left[i] / rows[i] * right[i] * unit(i) * others(i)).sum(),
         right,
         left,
     })

@@ -26,8 +26,11 @@ const CHECKED: usize = 6 * FINER;
 /// Points of doubt that are given at once.
 const MOST_DOUBTFUL: usize = 4;
 
-/// Components of no more cells that touch another of the same kind are where that grows narrower than a cell.
+/// Components of no more cells that are near to another of the same kind are where that grows narrower than a cell.
 const SLIVER: usize = 12;
+
+/// How many cells away the next part may be.
+const APART: usize = 2 * FINER;
 
 /// What there is.
 pub(super) struct Found {
@@ -134,28 +137,21 @@ impl<'s> Searcher<'s> {
         checked.into_iter().find(|&cell| self.at(cell, budget).map(likeness).is_some_and(|found| found != first))
     }
 
-    /// Gives small components to a neighbour of the same kind, across a curve that leaves less than a cell between.
+    /// Gives small components to one of the same kind nearby, across curves that leave less than a cell between.
     fn join_slivers(&mut self, owner: &mut [usize], budget: &Budget<'_>) {
-        let mut small: Vec<Vec<usize>> = members(owner).into_iter().filter(|cells| cells.len() <= SLIVER).collect();
-        // The largest first: those nearer to the tip then touch it.
-        small.sort_by_key(|cells| std::cmp::Reverse(cells.len()));
-        for _ in 0..small.len().min(SLIVER) {
-            let mut is_joined = false;
-            for cells in &small {
-                let own = owner[cells[0]];
-                let Some(kind) = self.at(cells[0], budget).map(likeness) else { return };
-                let beside: Vec<usize> = cells.iter().flat_map(|&cell| around(cell)).collect();
-                let other = beside.into_iter().find(|&cell| {
-                    owner[cell] != own && self.at(deepest_of(owner, cell), budget).map(likeness) == Some(kind.clone())
-                });
-                if let Some(other) = other {
-                    let joined = owner[other];
-                    owner.iter_mut().filter(|component| **component == own).for_each(|component| *component = joined);
-                    is_joined = true;
-                }
-            }
-            if !is_joined {
-                break;
+        let all = members(owner);
+        let mut kinds = Vec::with_capacity(all.len());
+        for members in &all {
+            let Some(kind) = self.at(deepest(owner, members), budget).map(likeness) else { return };
+            kinds.push(kind);
+        }
+        let mut small: Vec<usize> = (0..all.len()).filter(|&component| all[component].len() <= SLIVER).collect();
+        small.sort_by_key(|&component| all[component].len());
+        for component in small {
+            let mut nearby = all[component].iter().flat_map(|&cell| around(cell)).map(|cell| owner[cell]);
+            let own = owner[all[component][0]];
+            if let Some(joined) = nearby.find(|&other| other != own && kinds[other] == kinds[own]) {
+                owner.iter_mut().filter(|owner| **owner == own).for_each(|owner| *owner = joined);
             }
         }
         renumber(owner);
@@ -240,12 +236,6 @@ fn deepest(owner: &[usize], members: &[usize]) -> usize {
     best.unwrap_or_default()
 }
 
-/// The deepest cell of the component that a cell belongs to.
-fn deepest_of(owner: &[usize], cell: usize) -> usize {
-    let members: Vec<usize> = (0..owner.len()).filter(|&other| owner[other] == owner[cell]).collect();
-    deepest(owner, &members)
-}
-
 /// Components numbered in the order of their first cells, without gaps.
 fn renumber(owner: &mut [usize]) {
     let mut names: Vec<Option<usize>> = vec![None; owner.len()];
@@ -259,12 +249,15 @@ fn renumber(owner: &mut [usize]) {
     }
 }
 
-/// The up to eight cells around one.
+/// The cells around one, the nearest first.
 fn around(cell: usize) -> Vec<usize> {
     let [i, j] = [cell % GRID[0], cell / GRID[0]];
-    let rows = j.saturating_sub(1)..=(j + 1).min(GRID[1] - 1);
-    let columns = i.saturating_sub(1)..=(i + 1).min(GRID[0] - 1);
-    rows.flat_map(|j| columns.clone().map(move |i| j * GRID[0] + i)).filter(|&other| other != cell).collect()
+    let rows = j.saturating_sub(APART)..=(j + APART).min(GRID[1] - 1);
+    let columns = i.saturating_sub(APART)..=(i + APART).min(GRID[0] - 1);
+    let mut cells: Vec<usize> = rows.flat_map(|j| columns.clone().map(move |i| j * GRID[0] + i)).collect();
+    cells.retain(|&other| other != cell);
+    cells.sort_by_key(|other| (other % GRID[0]).abs_diff(i).max((other / GRID[0]).abs_diff(j)));
+    cells
 }
 
 /// Left, right, below and above; `None` beyond the edge.

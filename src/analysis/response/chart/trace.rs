@@ -273,9 +273,15 @@ impl<'t> Tracer<'t> {
         let crossed = |limit: &(usize, f64, f64)| inside(&next.at, *limit) < 0.0;
         let crossed: Vec<(usize, f64, f64)> = self.limits().into_iter().filter(crossed).collect();
         let mut ends: Vec<(f64, Option<Place>, End)> = Vec::new();
-        for limit in crossed {
+        for mut limit in crossed {
             if inside(&here.at, limit) < 0.0 {
                 return Some((None, End::Edge));
+            }
+            // Within the slack lie curves along a side; one that comes from inside ends on it.
+            if let Some(side) = self.side(limit)
+                && inside(&here.at, (limit.0, limit.1, side)) > 0.0
+            {
+                limit.2 = side;
             }
             let (length, place) = self.between(here, step, &mut |place| Some(inside(&place.at, limit)));
             ends.push((length, place, End::Edge));
@@ -286,6 +292,11 @@ impl<'t> Tracer<'t> {
             ends.push((length, place, End::Real));
         }
         ends.into_iter().min_by(|a, b| a.0.total_cmp(&b.0)).map(|(_, place, end)| (place, end))
+    }
+
+    /// Of a limit of an abundance the side of the box without the slack.
+    fn side(&self, (j, sign, _): (usize, f64, f64)) -> Option<f64> {
+        self.ground.sides.get(j).map(|side| if sign > 0.0 { side[0] } else { side[1] })
     }
 
     fn realness(&self, place: &Place) -> f64 {
