@@ -7,6 +7,7 @@ mod by_hand;
 mod closest;
 mod front;
 mod margins;
+mod pictures;
 mod setting;
 mod support;
 mod thresholds;

@@ -90,6 +90,8 @@ pub struct Facts {
     pub inside: Signs,
     /// Whether it depends on a state.
     pub state_dependent: bool,
+    /// Whether it depends on a state that stands for no parameter.
+    varies: bool,
     /// Bit i mod 64 is set where it depends on state i.
     states: u64,
 }
@@ -120,19 +122,29 @@ pub(super) fn of(graph: &Graph, operation: &Operation<NodeId>) -> Facts {
     let state_dependent = matches!(operation, Operation::State(_) | Operation::Interaction { .. })
         || operands.iter().any(|f| f.state_dependent);
     // Where it depends on parameters alone whether this is defined, it is so at every state or at none.
-    let by_parameters = !state_dependent || divides_by_fixed(operation, &operands);
+    let varies = leaf_varies(graph, operation) || operands.iter().any(|f| f.varies);
+    let by_parameters = !varies || divides_by_fixed(operation, &operands);
     Facts {
         range,
         total: (defined || by_parameters) && operands.iter().all(|f| f.total),
         total_inside: (defined_inside || by_parameters) && operands.iter().all(|f| f.total_inside),
         inside,
         state_dependent,
+        varies,
         states: leaf_states(operation) | operands.iter().fold(0, |all, f| all | f.states),
     }
 }
 
 fn divides_by_fixed(operation: &Operation<NodeId>, operands: &[Facts]) -> bool {
-    matches!(operation, Operation::Div(..)) && !operands[1].state_dependent
+    matches!(operation, Operation::Div(..)) && !operands[1].varies
+}
+
+fn leaf_varies(graph: &Graph, operation: &Operation<NodeId>) -> bool {
+    match operation {
+        Operation::State(i) => !graph.stand_ins.contains(i),
+        Operation::Interaction { .. } => true,
+        _ => false,
+    }
 }
 
 fn leaf_states(operation: &Operation<NodeId>) -> u64 {

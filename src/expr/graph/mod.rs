@@ -176,6 +176,8 @@ pub enum Variable {
 pub struct Graph {
     states: usize,
     parameters: Vec<Interval>,
+    /// States that stand for parameters: what is undefined at some value of theirs is so at every abundance.
+    stand_ins: std::ops::Range<usize>,
     nodes: Vec<Operation<NodeId>>,
     facts: Vec<Facts>,
     index: HashMap<Operation<NodeId>, NodeId>,
@@ -189,6 +191,7 @@ impl Graph {
         Self {
             states,
             parameters,
+            stand_ins: 0..0,
             nodes: Vec::new(),
             facts: Vec::new(),
             index: HashMap::new(),
