@@ -3,6 +3,7 @@
 #[path = "../common/mod.rs"]
 mod common;
 
+mod branches;
 mod by_hand;
 mod closest;
 mod front;
