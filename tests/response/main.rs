@@ -5,8 +5,10 @@ mod common;
 
 mod branches;
 mod by_hand;
+mod chart;
 mod closest;
 mod front;
+mod located;
 mod margins;
 mod pictures;
 mod setting;

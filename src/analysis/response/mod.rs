@@ -38,6 +38,7 @@ mod yields;
 
 pub use advice::advise;
 pub use bands::band;
+pub use chart::chart;
 pub use front::front;
 pub use margins::margins;
 pub use respond::respond;

@@ -48,10 +48,9 @@ impl Watch {
         if equations.species > LARGEST {
             return None;
         }
-        let (rows, balance, divided) = (equations.rows.clone(), equations.balance.clone(), equations.divided.clone());
         let absent: Vec<usize> = (0..equations.species).filter(|i| !face.moving.contains(i)).collect();
-        let own = Matrix::of_rows(equations, &rows, face)?;
-        let others = Matrix::of_absent(equations, &balance, &divided, &absent, face)?;
+        let own = Matrix::of_rows(equations, face)?;
+        let others = Matrix::of_absent(equations, &absent, face)?;
         let nodes: Vec<NodeId> = own.entries.iter().chain(&others.entries).copied().collect();
         let inputs = equations.inputs(face);
         let (kinks, differences) = kinks(equations, face);

@@ -170,14 +170,15 @@ pub enum Variable {
 
 /// The graph: nodes in topological order, and what is known of each.
 ///
-/// Facts hold for states in [0, ∞) and parameters in the domains given to [`Graph::new`]; a tape made from the graph
+/// Facts hold for states in [0, ∞) (in a widened graph, for those beyond the abundances in the domains that they have there)
+/// and parameters in the domains given to [`Graph::new`]; a tape made from the graph
 /// computes the same function outside them too, but rules that relied on a sign may then have widened its domain.
 #[derive(Clone, Debug)]
 pub struct Graph {
     states: usize,
+    /// The values that states after the abundances may have, where there are any: parameters that move.
+    beyond: Vec<Interval>,
     parameters: Vec<Interval>,
-    /// States that stand for parameters: what is undefined at some value of theirs is so at every abundance.
-    stand_ins: std::ops::Range<usize>,
     nodes: Vec<Operation<NodeId>>,
     facts: Vec<Facts>,
     index: HashMap<Operation<NodeId>, NodeId>,
@@ -190,8 +191,8 @@ impl Graph {
     pub fn new(states: usize, parameters: Vec<Interval>) -> Self {
         Self {
             states,
+            beyond: Vec::new(),
             parameters,
-            stand_ins: 0..0,
             nodes: Vec::new(),
             facts: Vec::new(),
             index: HashMap::new(),

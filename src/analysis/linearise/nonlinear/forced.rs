@@ -42,7 +42,9 @@ impl Lineariser {
     pub fn open(subject: &Subject<'_>, parameters: &[ParameterId]) -> Self {
         let mut values = subject.plan.values.clone();
         // Not 0, whatever it is in the scenario: terms of a parameter that is 0 are left out.
-        parameters.iter().for_each(|parameter| values[parameter.0] = 1.0);
+        for parameter in parameters {
+            values[parameter.0] = 1.0;
+        }
         let plan = Plan { values, ..subject.plan.clone() };
         Self::new(&mut Subject { plan: &plan, ..subject.clone() })
     }

@@ -6,13 +6,15 @@
 //! coefficient is 0 (Kuznetsov 2004, ch. 8 and 10).
 
 use crate::analysis::response::ThresholdKind;
-use crate::analysis::response::defining::frame::times;
+use crate::analysis::response::defining::frame::{Sizes, times};
 use crate::analysis::response::defining::kernel::kernel;
 use crate::analysis::response::defining::newton::{Linear, Newton, Root};
 use crate::analysis::response::defining::{Defining, Matrix};
 use crate::analysis::response::equations::{Equations, Face};
 use crate::analysis::response::locate::describe::Describer;
-use crate::analysis::response::locate::judge::{along, kernel_at};
+use crate::analysis::response::locate::judge::{Null, along, kernel_at};
+
+use crate::expr::tape::Tape;
 
 use super::trace::{Place, Tracer};
 
@@ -47,9 +49,8 @@ struct Signs {
 
 impl Corners {
     pub(super) fn new(equations: &mut Equations, face: &Face) -> Self {
-        let rows = equations.rows.clone();
         let is_map = equations.step.is_some();
-        let matrix = if is_map { None } else { Matrix::of_rows(equations, &rows, face) };
+        let matrix = if is_map { None } else { Matrix::of_rows(equations, face) };
         Self {
             cusp: Defining::cusp(equations, face),
             double: matrix.map(|matrix| Defining::pair(equations, face, &matrix)),
@@ -61,41 +62,50 @@ impl Corners {
         &self,
         equations: &Equations,
         face: &Face,
-        tracer: &Tracer<'_>,
+        tracer: &mut Tracer<'_>,
         places: &[Place],
     ) -> Vec<Corner> {
+        let (tape, values) = (equations.tape(face), &equations.values);
         let mut found = Vec::new();
         let mut before: Option<(Signs, &Place)> = None;
         for place in places {
-            let signs = signs(equations, face, tracer, place, before.as_ref().map(|(signs, _)| signs));
-            if let (Some(now), Some((then, last))) = (&signs, &before) {
-                if then.bend * now.bend < 0.0 {
-                    let share = then.bend / (then.bend - now.bend);
-                    found.extend(self.cusp_at(equations, tracer, [last, place], share));
-                }
-                if then.double * now.double < 0.0 {
-                    let share = then.double / (then.double - now.double);
-                    found.extend(self.double_at(equations, tracer, [last, place], share));
-                }
+            let sizes = tracer.sizes(&place.at);
+            let now = signs(&tape, values, face, &sizes, place, before.as_ref().map(|(signs, _)| signs));
+            if let (Some(now), Some((then, last))) = (&now, &before) {
+                let length = super::trace::length(last, place);
+                // As near as the curve itself leads, for these systems have narrow surroundings.
+                let mut nearest = |number: &dyn Fn(&Signs) -> f64| {
+                    let mut at =
+                        |at: &Place| signs(&tape, values, face, &sizes, at, Some(then)).map(|signs| number(&signs));
+                    if !changes(number(then), number(now)) {
+                        return None;
+                    }
+                    // A number that is 0 at an end may have no sign to change by when it is worked out again.
+                    let end = if number(then).abs() < number(now).abs() { *last } else { place };
+                    Some(tracer.between(last, length, &mut at).1.unwrap_or_else(|| end.clone()))
+                };
+                let (bend, double) = (nearest(&|signs| signs.bend), nearest(&|signs| signs.double));
+                found.extend(bend.and_then(|at| self.cusp_at(equations, tracer, &at, [last, place])));
+                found.extend(double.and_then(|at| self.double_at(equations, tracer, &at, [last, place])));
             }
-            before = signs.map(|signs| (signs, place));
+            before = now.map(|signs| (signs, place));
         }
         found
     }
 
-    fn cusp_at(&self, equations: &Equations, tracer: &Tracer<'_>, ends: [&Place; 2], share: f64) -> Option<Corner> {
-        let free = between(ends, share, self.cusp.free());
+    fn cusp_at(&self, equations: &Equations, tracer: &Tracer<'_>, at: &Place, ends: [&Place; 2]) -> Option<Corner> {
+        let free = at.at[..self.cusp.free()].to_vec();
         let sizes = tracer.sizes(&free);
         let mut start = self.cusp.starts(&equations.values, &free, &sizes).into_iter().next()?;
         let frame = self.cusp.frame(&equations.values, &mut start, &sizes)?;
         let root = Newton::new(&self.cusp.tape, &equations.values).root(&start, &frame.scale, &frame.linear)?;
-        corner(ThresholdKind::Cusp, &self.cusp, root, ends, &frame.scale)
+        corner(ThresholdKind::Cusp, &self.cusp, &root, ends, &frame.scale)
     }
 
     /// The double eigenvalue: from v with A v = w and w in the kernel of A.
-    fn double_at(&self, equations: &Equations, tracer: &Tracer<'_>, ends: [&Place; 2], share: f64) -> Option<Corner> {
+    fn double_at(&self, equations: &Equations, tracer: &Tracer<'_>, at: &Place, ends: [&Place; 2]) -> Option<Corner> {
         let system = self.double.as_ref()?;
-        let free = between(ends, share, system.free());
+        let free = at.at[..system.free()].to_vec();
         let sizes = tracer.sizes(&free);
         let n = system.order;
         let matrix = system.matrix_at(&equations.values, &free)?;
@@ -124,7 +134,7 @@ impl Corners {
         let linear: Vec<Linear> = frame.linear.iter().cloned().chain([Linear { row, value: 0.0 }]).collect();
         let root = Newton::new(&system.tape, &equations.values).root(&start, &frame.scale, &linear)?;
         let unknowns = root.at.clone();
-        let corner = corner(ThresholdKind::BogdanovTakens, system, root, ends, &frame.scale)?;
+        let corner = corner(ThresholdKind::BogdanovTakens, system, &root, ends, &frame.scale)?;
         Some(Corner { pair: Some(unknowns), ..corner })
     }
 }
@@ -147,10 +157,10 @@ pub(super) fn on_hopf(
     let mut found = Vec::new();
     for k in 1..places.len() {
         let (Some(a), Some(b)) = (values[k - 1], values[k]) else { continue };
-        if a * b >= 0.0 {
+        if !changes(a, b) {
             continue;
         }
-        let length = tracer.length(&places[k - 1], &places[k]);
+        let length = super::trace::length(&places[k - 1], &places[k]);
         let (_, place) = tracer.between(&places[k - 1], length, &mut coefficient);
         let Some(place) = place else { continue };
         found.push(Corner {
@@ -164,24 +174,26 @@ pub(super) fn on_hopf(
 }
 
 fn signs(
-    equations: &Equations,
+    tape: &Tape,
+    values: &[f64],
     face: &Face,
-    tracer: &Tracer<'_>,
+    sizes: &Sizes,
     place: &Place,
     before: Option<&Signs>,
 ) -> Option<Signs> {
-    let free = &place.at[..tracer.system.free()];
-    let sizes = tracer.sizes(free);
-    let ([mut right, mut left], rows, _) = kernel_at(equations, face, &sizes, free)?;
+    let free = &place.at[..sizes.moving.len() + sizes.controls.len()];
+    let Null { mut right, mut left, rows, .. } = kernel_at(tape, values, sizes, free)?;
     if let Some(before) = before {
         for (vector, last) in [(&mut right, &before.right), (&mut left, &before.left)] {
             let along: f64 = vector.iter().zip(last).map(|(a, b)| a * b).sum();
             if along < 0.0 {
-                vector.iter_mut().for_each(|x| *x = -*x);
+                for x in vector.iter_mut() {
+                    *x = -*x;
+                }
             }
         }
     }
-    let [second, _] = along(equations, face, &right, &sizes, free)?;
+    let [second, _] = along(tape, values, &right, sizes, free)?;
     let m = rows.len();
     let through = |i: usize| if face.is_divided[i] { free[i] } else { 1.0 };
     Some(Signs {
@@ -190,6 +202,11 @@ fn signs(
         right,
         left,
     })
+}
+
+/// Whether a sign changes; 0 counts as above, so that a point on the spot is met once.
+fn changes(a: f64, b: f64) -> bool {
+    (a < 0.0) != (b < 0.0)
 }
 
 /// v with A v = the right vector, at right angles to it; by a bordered system.
@@ -208,12 +225,8 @@ fn generalised(matrix: &[f64], right: &[f64], left: &[f64]) -> Option<Vec<f64>> 
     vector.iter().all(|x| x.is_finite()).then_some(vector)
 }
 
-fn between([a, b]: [&Place; 2], share: f64, free: usize) -> Vec<f64> {
-    (0..free).map(|j| a.at[j] + share * (b.at[j] - a.at[j])).collect()
-}
-
 /// A root as a point, if it is near the step on which it was looked for.
-fn corner(kind: ThresholdKind, system: &Defining, root: Root, [a, b]: [&Place; 2], scale: &[f64]) -> Option<Corner> {
+fn corner(kind: ThresholdKind, system: &Defining, root: &Root, [a, b]: [&Place; 2], scale: &[f64]) -> Option<Corner> {
     let [m, _] = system.counts;
     let free = system.free();
     let length = (0..free).fold(0.0f64, |most, j| most.max(((b.at[j] - a.at[j]) / scale[j]).abs()));

@@ -2,25 +2,32 @@
 //!
 //! [`chart`] looks for thresholds along lines through the chart, in both directions (`seeds`), follows each as a curve with
 //! both controls free (`trace`), locates what is special on it (`corner`), and asks the certified search what the regions
-//! between the curves hold (`regions`). Curves are numerical, and one that meets none of the lines and ends in no point of
-//! another curve is not seen; where the search finds that a region is not of one kind, it is divided by what was found.
-//! Crossings inside a face are no curves of their own in general and are not followed.
+//! between the curves hold (`regions`). Where the search finds that a region is not of one kind, further lines are laid
+//! through it; where that finds no curve, it is divided by what was found. All curves are numerical, and one that bounds only
+//! what no search has looked at may be missing. Crossings inside a face are no curves of their own in general and are not
+//! followed.
 
 mod corner;
 mod regions;
+mod seeds;
 mod trace;
 
+use super::defining::at_face;
 use super::equations::{Equations, Face};
 use super::locate::describe::Describer;
 use super::locate::{Locator, Sign};
 use super::{Chart, ChartCurve, ChartPoint, Control, ThresholdKind};
-use crate::analysis::equilibria::Budget;
+use crate::analysis::equilibria::{Budget, Equilibrium};
 use crate::analysis::subject::Subject;
 use corner::{Corner, Corners};
+use regions::Searcher;
 use trace::{End, Ground, Place, Tracer};
 
 /// Curves that are followed.
 const MOST_CURVES: usize = 60;
+
+/// Times that further lines are laid where the regions do not fit the curves.
+const ROUNDS: usize = 3;
 
 /// A seed this near to a curve, as a share of the distance of two points of it, lies on it.
 const ON_CURVE: f64 = 0.2;
@@ -58,19 +65,63 @@ struct Traced {
     closed: bool,
 }
 
-/// The chart from thresholds that are known.
+/// The chart of two controls, of which `list` is the scenario's at their present values.
+///
+/// Controls are in their units. A chart without curves where a range is empty. Points of curves are roots of the systems that
+/// define them (Kuznetsov 2004, ch. 10); what regions hold is certified where the region says that it is complete.
+pub fn chart(subject: &Subject<'_>, controls: [Control; 2], list: &[Equilibrium], budget: &Budget<'_>) -> Chart {
+    let mut work = Work::new(subject, controls, budget);
+    let has_range = |control: &Control| control.from < control.to;
+    if !controls.iter().all(has_range) {
+        return Chart {
+            controls,
+            curves: Vec::new(),
+            points: Vec::new(),
+            regions: Vec::new(),
+            cells: Vec::new(),
+            grid: [0; 2],
+        };
+    }
+    let mut searcher = Searcher::new(subject, controls);
+    let is_inside = controls.iter().all(|control| (control.from..=control.to).contains(&control.present));
+    if is_inside {
+        let present = controls.map(|control| control.present);
+        for which in [0, 1] {
+            work.look_along(subject, which, present, Some(list), budget);
+        }
+    }
+    for (which, through) in lines(&controls) {
+        work.look_along(subject, which, through, None, budget);
+    }
+    for _ in 0..ROUNDS {
+        let curves = work.curves();
+        let known = work.traced.len();
+        for through in searcher.doubtful(&curves, budget) {
+            for which in [0, 1] {
+                work.look_along(subject, which, through, None, budget);
+            }
+        }
+        if work.traced.len() == known || (budget.stop)() {
+            break;
+        }
+    }
+    work.finish(searcher, budget)
+}
+
+/// Lines across the chart: which control varies, and the point from whose states it is followed both ways.
+fn lines(controls: &[Control; 2]) -> Vec<(usize, [f64; 2])> {
+    let at = |k: usize, share: f64| controls[k].from + share * (controls[k].to - controls[k].from);
+    // Starts that lie apart along the lines as well.
+    let places = [(0.12, 0.7), (0.5, 0.3), (0.88, 0.55)];
+    let across = places.iter().map(|&(held, start)| (0, [at(0, start), at(1, held)]));
+    across.chain(places.iter().map(|&(held, start)| (1, [at(0, held), at(1, start)]))).collect()
+}
+
+/// The chart from thresholds that are known, with no further ones looked for.
 pub fn chart_from(subject: &Subject<'_>, controls: [Control; 2], seeds: &[Seed], budget: &Budget<'_>) -> Chart {
     let mut work = Work::new(subject, controls, budget);
-    let starts = seeds.iter().filter_map(|seed| work.start(seed));
-    let mut queue: Vec<Start> = starts.collect();
-    queue.reverse();
-    while let Some(start) = queue.pop()
-        && work.traced.len() < MOST_CURVES
-        && !(budget.stop)()
-    {
-        work.follow(start, &mut queue);
-    }
-    work.finish(subject, budget)
+    work.follow_all(seeds);
+    work.finish(Searcher::new(subject, controls), budget)
 }
 
 /// What a chart is made with.
@@ -98,6 +149,28 @@ impl<'w> Work<'w> {
         }
     }
 
+    fn look_along(
+        &mut self,
+        subject: &Subject<'_>,
+        which: usize,
+        through: [f64; 2],
+        list: Option<&[Equilibrium]>,
+        budget: &Budget<'_>,
+    ) {
+        let seeds = seeds::along(subject, &mut self.equations, &self.controls, which, through, list, budget);
+        self.follow_all(&seeds);
+    }
+
+    fn follow_all(&mut self, seeds: &[Seed]) {
+        let mut queue: Vec<Start> = seeds.iter().rev().filter_map(|seed| self.start(seed)).collect();
+        while let Some(start) = queue.pop()
+            && self.traced.len() < MOST_CURVES
+            && !(self.stop)()
+        {
+            self.follow(start, &mut queue);
+        }
+    }
+
     fn start(&mut self, seed: &Seed) -> Option<Start> {
         let face = self.equations.face(&seed.present)?;
         let free = face.moving.iter().map(|&i| seed.state[i]).chain(seed.at).collect();
@@ -121,7 +194,7 @@ impl<'w> Work<'w> {
         }
         let (places, ends) = both_ways(&mut tracer, middle);
         let mut found = match (&corners, &sign) {
-            (Some(corners), Sign::Turn) => corners.on_fold(&self.equations, &face, &tracer, &places),
+            (Some(corners), Sign::Turn) => corners.on_fold(&self.equations, &face, &mut tracer, &places),
             (Some(_), _) => corner::on_hopf(&mut self.describer, &face, &mut tracer, &places),
             _ => Vec::new(),
         };
@@ -199,9 +272,15 @@ impl<'w> Work<'w> {
         state
     }
 
-    fn finish(mut self, subject: &Subject<'_>, budget: &Budget<'_>) -> Chart {
+    fn curves(&mut self) -> Vec<ChartCurve> {
         let traced = std::mem::take(&mut self.traced);
-        let curves: Vec<ChartCurve> = traced.iter().map(|traced| self.curve(traced)).collect();
+        let curves = traced.iter().map(|traced| self.curve(traced)).collect();
+        self.traced = traced;
+        curves
+    }
+
+    fn finish(mut self, mut searcher: Searcher<'_>, budget: &Budget<'_>) -> Chart {
+        let curves = self.curves();
         let points = self.points.iter().map(|(corner, face)| {
             let m = face.moving.len();
             ChartPoint {
@@ -212,7 +291,7 @@ impl<'w> Work<'w> {
             }
         });
         let points = points.collect();
-        let regions::Found { regions, cells, grid } = regions::find(subject, &self.controls, &curves, budget);
+        let regions::Found { regions, cells, grid } = searcher.regions(&curves, budget);
         Chart { controls: self.controls, curves, points, regions, cells, grid }
     }
 

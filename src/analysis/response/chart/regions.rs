@@ -11,11 +11,26 @@ use crate::analysis::linearise::{Kind, Lineariser};
 use crate::analysis::response::{ChartCurve, Control, Region, RegionState};
 use crate::analysis::subject::Subject;
 
-/// Columns and rows.
-const GRID: [usize; 2] = [48, 24];
+/// Columns and rows of the grid that is given.
+const GIVEN: [usize; 2] = [48, 24];
+
+/// Cells of the grid that is worked on, each way, for one of that; odd, so that the middle one has the same middle.
+const FINER: usize = 3;
+
+/// Columns and rows of the grid that is worked on.
+const GRID: [usize; 2] = [GIVEN[0] * FINER, GIVEN[1] * FINER];
 
 /// One cell of so many each way is searched, to check that a region is of one kind.
-const CHECKED: usize = 6;
+const CHECKED: usize = 6 * FINER;
+
+/// Points of doubt that are given at once.
+const MOST_DOUBTFUL: usize = 4;
+
+/// Components of no more cells that are near to another of the same kind are where that grows narrower than a cell.
+const SLIVER: usize = 12;
+
+/// How many cells away the next part may be.
+const APART: usize = 2 * FINER;
 
 /// What there is.
 pub(super) struct Found {
@@ -24,8 +39,8 @@ pub(super) struct Found {
     pub(super) grid: [usize; 2],
 }
 
-/// Searches at cells.
-struct Searcher<'s> {
+/// Searches at cells; what was found there stays known.
+pub(super) struct Searcher<'s> {
     subject: Subject<'s>,
     lineariser: Lineariser,
     controls: [Control; 2],
@@ -33,32 +48,10 @@ struct Searcher<'s> {
     known: Vec<Option<Region>>,
 }
 
-/// The regions of a chart with these curves.
-pub(super) fn find(
-    subject: &Subject<'_>,
-    controls: &[Control; 2],
-    curves: &[ChartCurve],
-    budget: &Budget<'_>,
-) -> Found {
-    let cells = Cells::new(controls, curves);
-    let count = GRID[0] * GRID[1];
-    let mut searcher = Searcher::new(subject, *controls);
-    let mut owner = cells.components(&|_, _| true);
-    let mixed: Vec<usize> = members(&owner)
-        .iter()
-        .enumerate()
-        .filter(|(_, members)| !searcher.is_of_one_kind(&owner, members, budget))
-        .map(|(component, _)| component)
-        .collect();
-    if !mixed.is_empty() {
-        let found = |cell: usize| searcher.at(cell, budget).map(likeness);
-        let mut kinds = vec![None; count];
-        for (cell, found) in (0..count).map(found).enumerate().filter(|(cell, _)| mixed.contains(&owner[*cell])) {
-            kinds[cell] = found;
-        }
-        owner = cells.components(&|a, b| kinds[a] == kinds[b]);
-    }
-    searcher.named(&owner, budget)
+/// The middle one of those cells that are one of the grid that is given.
+fn given_middle(cell: usize) -> usize {
+    let place = |k: usize| k / FINER * FINER + FINER / 2;
+    place(cell / GRID[0]) * GRID[0] + place(cell % GRID[0])
 }
 
 /// The cells of each component, in order.
@@ -70,7 +63,7 @@ fn members(owner: &[usize]) -> Vec<Vec<usize>> {
 }
 
 impl<'s> Searcher<'s> {
-    fn new(subject: &Subject<'s>, controls: [Control; 2]) -> Self {
+    pub(super) fn new(subject: &Subject<'s>, controls: [Control; 2]) -> Self {
         let parameters = controls.map(|control| control.parameter);
         Self {
             lineariser: Lineariser::open(subject, &parameters),
@@ -79,6 +72,36 @@ impl<'s> Searcher<'s> {
             controls,
             known: vec![None; GRID[0] * GRID[1]],
         }
+    }
+
+    /// Points at which something else is found than in the depth of the region that the curves make them part of.
+    pub(super) fn doubtful(&mut self, curves: &[ChartCurve], budget: &Budget<'_>) -> Vec<[f64; 2]> {
+        let owner = Cells::new(&self.controls, curves).components(&|_, _| true);
+        let members = members(&owner);
+        let others = members.iter().filter_map(|members| self.other_kind(&owner, members, budget));
+        let others: Vec<usize> = others.take(MOST_DOUBTFUL).collect();
+        others.into_iter().map(|cell| middle(&self.controls, cell)).collect()
+    }
+
+    /// The regions of a chart with these curves.
+    pub(super) fn regions(&mut self, curves: &[ChartCurve], budget: &Budget<'_>) -> Found {
+        let cells = Cells::new(&self.controls, curves);
+        let mut owner = cells.components(&|_, _| true);
+        let members = members(&owner);
+        let is_mixed = |component: &usize| self.other_kind(&owner, &members[*component], budget).is_some();
+        let mixed: Vec<usize> = (0..members.len()).filter(is_mixed).collect();
+        if !mixed.is_empty() {
+            let mut kinds = vec![None; owner.len()];
+            for cell in (0..owner.len()).filter(|&cell| mixed.contains(&owner[cell])) {
+                // Cells around the middle of one that is given take after it, if no curve runs between.
+                let middle = given_middle(cell);
+                let looked_at = if owner[middle] == owner[cell] { middle } else { cell };
+                kinds[cell] = self.at(looked_at, budget).map(likeness);
+            }
+            owner = cells.components(&|a, b| kinds[a] == kinds[b]);
+        }
+        self.join_slivers(&mut owner, budget);
+        self.named(&owner, budget)
     }
 
     /// What is at the middle of a cell; `None` where the search was stopped.
@@ -107,11 +130,31 @@ impl<'s> Searcher<'s> {
         Some(Region { inside, equilibria: states.collect(), complete: found.complete })
     }
 
-    /// Whether the cells of a component that are looked at have the same number and types of equilibria as its deepest.
-    fn is_of_one_kind(&mut self, owner: &[usize], members: &[usize], budget: &Budget<'_>) -> bool {
-        let Some(first) = self.at(deepest(owner, members), budget).map(likeness) else { return true };
+    /// The first cell that is looked at in a component where number or types of equilibria are not those in its depth.
+    fn other_kind(&mut self, owner: &[usize], members: &[usize], budget: &Budget<'_>) -> Option<usize> {
+        let first = self.at(deepest(owner, members), budget).map(likeness)?;
         let checked: Vec<usize> = members.iter().copied().filter(|&cell| is_checked(cell)).collect();
-        checked.into_iter().all(|cell| self.at(cell, budget).map(likeness).is_none_or(|found| found == first))
+        checked.into_iter().find(|&cell| self.at(cell, budget).map(likeness).is_some_and(|found| found != first))
+    }
+
+    /// Gives small components to one of the same kind nearby, across curves that leave less than a cell between.
+    fn join_slivers(&mut self, owner: &mut [usize], budget: &Budget<'_>) {
+        let all = members(owner);
+        let mut kinds = Vec::with_capacity(all.len());
+        for members in &all {
+            let Some(kind) = self.at(deepest(owner, members), budget).map(likeness) else { return };
+            kinds.push(kind);
+        }
+        let mut small: Vec<usize> = (0..all.len()).filter(|&component| all[component].len() <= SLIVER).collect();
+        small.sort_by_key(|&component| all[component].len());
+        for component in small {
+            let mut nearby = all[component].iter().flat_map(|&cell| around(cell)).map(|cell| owner[cell]);
+            let own = owner[all[component][0]];
+            if let Some(joined) = nearby.find(|&other| other != own && kinds[other] == kinds[own]) {
+                owner.iter_mut().filter(|owner| **owner == own).for_each(|owner| *owner = joined);
+            }
+        }
+        renumber(owner);
     }
 
     fn named(&mut self, owner: &[usize], budget: &Budget<'_>) -> Found {
@@ -119,10 +162,16 @@ impl<'s> Searcher<'s> {
         let mut cells = vec![None; owner.len()];
         for members in members(owner) {
             let Some(region) = self.at(deepest(owner, &members), budget).cloned() else { continue };
-            members.iter().for_each(|&cell| cells[cell] = Some(regions.len()));
+            for cell in members {
+                cells[cell] = Some(regions.len());
+            }
             regions.push(region);
         }
-        Found { regions, cells, grid: GRID }
+        let given = (0..GIVEN[0] * GIVEN[1]).map(|cell| {
+            let [i, j] = [cell % GIVEN[0], cell / GIVEN[0]].map(|k| k * FINER + FINER / 2);
+            cells[j * GRID[0] + i]
+        });
+        Found { regions, cells: given.collect(), grid: GIVEN }
     }
 }
 
@@ -187,6 +236,30 @@ fn deepest(owner: &[usize], members: &[usize]) -> usize {
     best.unwrap_or_default()
 }
 
+/// Components numbered in the order of their first cells, without gaps.
+fn renumber(owner: &mut [usize]) {
+    let mut names: Vec<Option<usize>> = vec![None; owner.len()];
+    let mut count = 0;
+    for component in owner {
+        let name = *names[*component].get_or_insert_with(|| {
+            count += 1;
+            count - 1
+        });
+        *component = name;
+    }
+}
+
+/// The cells around one, the nearest first.
+fn around(cell: usize) -> Vec<usize> {
+    let [i, j] = [cell % GRID[0], cell / GRID[0]];
+    let rows = j.saturating_sub(APART)..=(j + APART).min(GRID[1] - 1);
+    let columns = i.saturating_sub(APART)..=(i + APART).min(GRID[0] - 1);
+    let mut cells: Vec<usize> = rows.flat_map(|j| columns.clone().map(move |i| j * GRID[0] + i)).collect();
+    cells.retain(|&other| other != cell);
+    cells.sort_by_key(|other| (other % GRID[0]).abs_diff(i).max((other / GRID[0]).abs_diff(j)));
+    cells
+}
+
 /// Left, right, below and above; `None` beyond the edge.
 fn neighbours(cell: usize) -> [Option<usize>; 4] {
     let [i, j] = [cell % GRID[0], cell / GRID[0]];
@@ -228,17 +301,15 @@ impl Cells {
             let (low, high) = (a[other].min(b[other]), a[other].max(b[other]));
             let first = low.ceil().max(0.0);
             let last = (high.ceil() - 1.0).min(GRID[other] as f64 - 1.0);
-            let mut line = first;
-            while line <= last {
-                let share = (line - a[other]) / (b[other] - a[other]);
-                let at = (a[k] + share * (b[k] - a[k])).floor();
-                if at >= 0.0 && at + 1.0 < GRID[k] as f64 {
-                    let mut place = [0usize; 2];
-                    place[k] = at as usize;
-                    place[other] = line as usize;
+            for line in (0..GRID[other]).filter(|&line| (first..=last).contains(&(line as f64))) {
+                let share = (line as f64 - a[other]) / (b[other] - a[other]);
+                let at = a[k] + share * (b[k] - a[k]);
+                // The middle before it.
+                if let Some(before) = (0..GRID[k] - 1).find(|&i| (i as f64..(i + 1) as f64).contains(&at)) {
+                    let mut place = [line; 2];
+                    place[k] = before;
                     self.cut[place[1] * GRID[0] + place[0]][k] = true;
                 }
-                line += 1.0;
             }
         }
     }

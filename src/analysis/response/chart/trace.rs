@@ -42,7 +42,9 @@ pub(super) struct Place {
 impl Place {
     /// The same point on the way back.
     pub(super) fn reversed(mut self) -> Self {
-        self.tangent.iter_mut().for_each(|t| *t = -*t);
+        for t in &mut self.tangent {
+            *t = -*t;
+        }
         self
     }
 }
@@ -149,7 +151,7 @@ impl<'t> Tracer<'t> {
     pub(super) fn follow(&mut self, start: &Place, forwards: bool) -> (Vec<Place>, End) {
         let mut here = start.clone();
         if !forwards {
-            here.tangent.iter_mut().for_each(|t| *t = -*t);
+            here = here.reversed();
         }
         let first = here.clone();
         let mut step = FIRST_STEP;
@@ -271,9 +273,15 @@ impl<'t> Tracer<'t> {
         let crossed = |limit: &(usize, f64, f64)| inside(&next.at, *limit) < 0.0;
         let crossed: Vec<(usize, f64, f64)> = self.limits().into_iter().filter(crossed).collect();
         let mut ends: Vec<(f64, Option<Place>, End)> = Vec::new();
-        for limit in crossed {
+        for mut limit in crossed {
             if inside(&here.at, limit) < 0.0 {
                 return Some((None, End::Edge));
+            }
+            // Within the slack lie curves along a side; one that comes from inside ends on it.
+            if let Some(side) = self.side(limit)
+                && inside(&here.at, (limit.0, limit.1, side)) > 0.0
+            {
+                limit.2 = side;
             }
             let (length, place) = self.between(here, step, &mut |place| Some(inside(&place.at, limit)));
             ends.push((length, place, End::Edge));
@@ -284,6 +292,11 @@ impl<'t> Tracer<'t> {
             ends.push((length, place, End::Real));
         }
         ends.into_iter().min_by(|a, b| a.0.total_cmp(&b.0)).map(|(_, place, end)| (place, end))
+    }
+
+    /// Of a limit of an abundance the side of the box without the slack.
+    fn side(&self, (j, sign, _): (usize, f64, f64)) -> Option<f64> {
+        self.ground.sides.get(j).map(|side| if sign > 0.0 { side[0] } else { side[1] })
     }
 
     fn realness(&self, place: &Place) -> f64 {
@@ -312,12 +325,12 @@ impl<'t> Tracer<'t> {
             None => (step, None),
         }
     }
+}
 
-    /// The length along the tangent of one point to another.
-    pub(super) fn length(&self, here: &Place, next: &Place) -> f64 {
-        let parts = here.at.iter().zip(&next.at).zip(&here.frame.scale).zip(&here.tangent);
-        parts.map(|(((a, b), scale), t)| t * (b - a) / scale).sum()
-    }
+/// The length along the tangent of one point to another.
+pub(super) fn length(here: &Place, next: &Place) -> f64 {
+    let parts = here.at.iter().zip(&next.at).zip(&here.frame.scale).zip(&here.tangent);
+    parts.map(|(((a, b), scale), t)| t * (b - a) / scale).sum()
 }
 
 /// Above 0 where a pair's system has a pair: ω², for a map 1 − cos² θ.

@@ -163,6 +163,8 @@ fn unit(vector: &[f64]) -> Option<Vec<f64>> {
 }
 
 fn shrink(vector: &mut [f64], length: f64) -> Option<()> {
-    vector.iter_mut().for_each(|x| *x /= length);
+    for x in vector {
+        *x /= length;
+    }
     (length.is_finite() && length > 0.0).then_some(())
 }

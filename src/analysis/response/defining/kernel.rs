@@ -12,8 +12,8 @@ const ROUNDS: usize = 5;
 /// Right and left vectors of the smallest singular value of a matrix of order n, row by row, each of length 1 (inverse
 /// iteration by bordered systems; Govaerts 2000, ch. 3, from memory). `None` where more than one is nearly 0.
 pub(in crate::analysis::response) fn kernel(matrix: &[f64], n: usize) -> Option<[Vec<f64>; 2]> {
-    let mut right = unit((0..n).map(|i| 1.0 + 0.37 * ((i * i) as f64 + 1.0).cos()).collect())?;
-    let mut left = unit((0..n).map(|i| 1.0 + 0.41 * ((i * i) as f64 + 2.0).sin()).collect())?;
+    let mut right = unit(&(0..n).map(|i| 1.0 + 0.37 * ((i * i) as f64 + 1.0).cos()).collect::<Vec<_>>())?;
+    let mut left = unit(&(0..n).map(|i| 1.0 + 0.41 * ((i * i) as f64 + 2.0).sin()).collect::<Vec<_>>())?;
     let transposed = transposed(matrix, n);
     for _ in 0..ROUNDS {
         let next = bordered(matrix, n, &left, &right)?;
@@ -37,10 +37,10 @@ fn bordered(matrix: &[f64], n: usize, b: &[f64], c: &[f64]) -> Option<Vec<f64>> 
     vector[n] = 1.0;
     solve(&mut entries, &mut vector)?;
     vector.pop();
-    unit(vector)
+    unit(&vector)
 }
 
-fn unit(vector: Vec<f64>) -> Option<Vec<f64>> {
+fn unit(vector: &[f64]) -> Option<Vec<f64>> {
     let length = vector.iter().map(|x| x * x).sum::<f64>().sqrt();
     (length.is_finite() && length > 0.0).then(|| vector.iter().map(|x| x / length).collect())
 }
@@ -66,7 +66,7 @@ pub(in crate::analysis::response) fn pairs(matrix: &[f64], n: usize, is_map: boo
             // Turned so that Σ v² is real, real and imaginary part are at right angles.
             let square: Complex<f64> = column.iter().map(|z| z * z).sum();
             let turn = Complex::from_polar(1.0, -0.5 * square.arg());
-            let vector = unit(column.iter().map(|z| (z * turn).re).collect())?;
+            let vector = unit(&column.iter().map(|z| (z * turn).re).collect::<Vec<_>>())?;
             Some(Pair { value: found.values[k], vector })
         })
         .collect();

@@ -82,29 +82,26 @@ impl Matrix {
         Self { entries, order: face.moving.len() }
     }
 
-    /// Derivatives of these rows, of those who move, at the states of the face; `None` where they have no value there.
-    pub(super) fn of_rows(equations: &mut Equations, rows: &[NodeId], face: &Face) -> Option<Self> {
-        let rows: Vec<NodeId> = face.moving.iter().map(|&i| rows[i]).collect();
+    /// Derivatives of the rates or the next state of those who move, at the states of the face; `None` where they have no
+    /// value there.
+    pub(super) fn of_rows(equations: &mut Equations, face: &Face) -> Option<Self> {
+        let rows: Vec<NodeId> = face.moving.iter().map(|&i| equations.rows[i]).collect();
         let rows = at_face(equations, &rows, face)?;
         let entries = slopes(&mut equations.graph, &rows, &face.moving);
         Some(Self { entries, order: face.moving.len() })
     }
 
-    /// Derivatives of the rows of absent species with respect to these species. A row that vanishes with its own species
+    /// Derivatives of the balance of absent species with respect to these species. A row that vanishes with its own species
     /// has its growth on the diagonal and nothing beside it.
-    pub(super) fn of_absent(
-        equations: &mut Equations,
-        rows: &[NodeId],
-        divided: &[Option<NodeId>],
-        absent: &[usize],
-        face: &Face,
-    ) -> Option<Self> {
+    pub(super) fn of_absent(equations: &mut Equations, absent: &[usize], face: &Face) -> Option<Self> {
         let zero = equations.graph.zero();
         let mut entries = Vec::with_capacity(absent.len() * absent.len());
         for (place, &i) in absent.iter().enumerate() {
-            match divided[i] {
-                Some(growth) => entries.extend((0..absent.len()).map(|j| if j == place { growth } else { zero })),
-                None => entries.extend(slopes(&mut equations.graph, &[rows[i]], absent)),
+            if let Some(growth) = equations.divided[i] {
+                entries.extend((0..absent.len()).map(|j| if j == place { growth } else { zero }));
+            } else {
+                let row = equations.balance[i];
+                entries.extend(slopes(&mut equations.graph, &[row], absent));
             }
         }
         Some(Self { entries: at_face(equations, &entries, face)?, order: absent.len() })

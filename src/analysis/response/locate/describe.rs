@@ -19,6 +19,9 @@ const CLEAR: f64 = 1e-7;
 /// An eigenvalue this near to the border, relative to the largest, is the critical one.
 const ON_BORDER: f64 = 1e-6;
 
+/// Quantities this near to each other, as a share of their size around, are equal.
+const TIED: f64 = 1e-9;
+
 /// Describes thresholds of one scenario over some controls.
 pub struct Describer {
     lineariser: Lineariser,
@@ -45,8 +48,8 @@ impl Describer {
         let m = located.point.len() - self.controls.len();
         self.set(&located.point[m..]);
         let [eigenvalues, other_side] = match located.kink {
-            Some(node) => {
-                let sides = self.both_sides(equations, event, located, node);
+            Some(_) => {
+                let sides = self.both_sides(equations, event, located);
                 sides.map_or([None, None], |sides| sides.map(Some))
             }
             None => [self.eigenvalues(located), None],
@@ -118,30 +121,23 @@ impl Describer {
         Some(values.iter().all(|z| excess(z) <= ON_BORDER * most))
     }
 
-    /// Eigenvalues where the first of the two quantities is the smaller and where it is the larger, those of the side with
-    /// the lower control first.
+    /// Eigenvalues on either side of a kink, those of the side with the lower control first: with every choice between two
+    /// quantities that are equal there as it is made at that one of the event's points.
     fn both_sides(
         &self,
         equations: &mut Equations,
         event: &Event<'_>,
         located: &Located,
-        node: NodeId,
     ) -> Option<[Vec<Complex<f64>>; 2]> {
-        let pieces = pieces(equations, node)?;
-        let (a, b) = compared(equations, node)?;
-        let difference = equations.graph.sub(a, b);
         let m = event.face.moving.len();
-        let inputs = equations.inputs(event.face);
-        let difference = super::at_face(equations, &[difference], event.face)?;
-        let tape = Tape::over(&equations.graph, &difference, &inputs);
-        let mut run = tape.start(&equations.values);
-        let lower = if event.before.get(m) <= event.after.get(m) { event.before } else { event.after };
-        run.at(lower);
-        let first_is_smaller = *run.output(0) < 0.0;
-        let [less, more] = pieces.map(|piece| spectrum_with(equations, located, node, piece));
-        let (less, more) = (less?, more?);
-        let found = if first_is_smaller { [less, more] } else { [more, less] };
-        Some(found.map(|values| self.ordered(values)))
+        let rises = event.before.get(m) <= event.after.get(m);
+        let points = if rises { [event.before, event.after] } else { [event.after, event.before] };
+        let mut found = [Vec::new(), Vec::new()];
+        for (found, point) in found.iter_mut().zip(points) {
+            let changes = choices(equations, event, located, point);
+            *found = self.ordered(spectrum_with(equations, located, &changes)?);
+        }
+        Some(found)
     }
 
     fn ordered(&self, values: Vec<Complex<f64>>) -> Vec<Complex<f64>> {
@@ -205,16 +201,41 @@ fn on_border(mut values: Vec<Complex<f64>>, place: Place) -> Vec<Complex<f64>> {
     values
 }
 
-/// Eigenvalues of all rows with a node replaced, absent species by their own growth where their rows can be divided.
+/// Choices in the rows between quantities that are equal at a threshold, each with what it is on the side of a point.
+fn choices(equations: &mut Equations, event: &Event<'_>, located: &Located, point: &[f64]) -> Vec<(NodeId, NodeId)> {
+    let inputs: Vec<usize> = (0..equations.species + equations.controls.len()).collect();
+    let m = event.face.moving.len();
+    let there: Vec<f64> = located.state.iter().chain(&located.point[m..]).copied().collect();
+    let mut beside = there.clone();
+    event.face.moving.iter().zip(point).for_each(|(&i, &x)| beside[i] = x);
+    beside[equations.species..].copy_from_slice(&point[m..]);
+    let rows = equations.rows.clone();
+    let mut changes = Vec::new();
+    for node in equations.graph.reachable(&rows) {
+        let (Some((a, b)), Some(pieces)) = (compared(equations, node), pieces(equations, node)) else { continue };
+        let tape = Tape::over(&equations.graph, &[a, b], &inputs);
+        let mut run = tape.start(&equations.values);
+        let mut difference = |at: &[f64]| {
+            run.at(at);
+            (*run.output(0) - *run.output(1), run.output(0).abs().max(run.output(1).abs()))
+        };
+        let ((tie, size), (side, beside)) = (difference(&there), difference(&beside));
+        if tie.abs() <= TIED * size.max(beside) {
+            changes.push((node, pieces[usize::from(side > 0.0)]));
+        }
+    }
+    changes
+}
+
+/// Eigenvalues of all rows with some nodes replaced, absent species by their own growth where their rows can be divided.
 fn spectrum_with(
     equations: &mut Equations,
     located: &Located,
-    node: NodeId,
-    piece: NodeId,
+    changes: &[(NodeId, NodeId)],
 ) -> Option<Vec<Complex<f64>>> {
     let n = equations.species;
     let rows = equations.rows.clone();
-    let rows = equations.graph.replaced(&rows, node, piece);
+    let rows = equations.graph.replaced(&rows, changes);
     let growth: Vec<Option<NodeId>> =
         rows.iter().enumerate().map(|(i, &row)| equations.graph.divide(row, i).quotient).collect();
     let inputs: Vec<usize> = (0..n + equations.controls.len()).collect();

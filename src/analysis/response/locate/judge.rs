@@ -6,6 +6,7 @@ use crate::analysis::response::defining::kernel::kernel;
 use crate::analysis::response::defining::newton::Root;
 use crate::analysis::response::defining::{Defining, Shape};
 use crate::analysis::response::equations::{Equations, Face};
+use crate::expr::tape::Tape;
 use crate::expr::tape::jet::Jet;
 
 use super::{Event, Located, Sign};
@@ -90,13 +91,12 @@ pub(in crate::analysis::response) fn is_complex(system: &Defining, sizes: &Sizes
 }
 
 /// F's slopes by the moving species and by every control at a point.
-fn face_slopes(equations: &Equations, face: &Face, free: &[f64]) -> Option<(Vec<f64>, Vec<f64>)> {
-    let tape = equations.tape(face);
-    let mut run = tape.start_gradient(&equations.values);
+fn face_slopes(tape: &Tape, values: &[f64], free: &[f64]) -> Option<(Vec<f64>, Vec<f64>)> {
+    let mut run = tape.start_gradient(values);
     if !run.at(free).defined {
         return None;
     }
-    let (m, n) = (face.moving.len(), free.len());
+    let (m, n) = (tape.outputs(), free.len());
     let (mut by_species, mut by_controls) = (Vec::new(), Vec::new());
     for i in 0..m {
         let nothing = vec![0.0; n];
@@ -107,27 +107,39 @@ fn face_slopes(equations: &Equations, face: &Face, free: &[f64]) -> Option<(Vec<
     Some((by_species, by_controls))
 }
 
-/// Right and left vector of the kernel of Fₓ in the sizes of species and rows, those sizes of rows, and F's slopes by the
-/// controls.
+/// The kernel of Fₓ at a point.
+pub(in crate::analysis::response) struct Null {
+    /// Right vector, in the sizes of species.
+    pub(in crate::analysis::response) right: Vec<f64>,
+    /// Left vector, in the sizes of rows.
+    pub(in crate::analysis::response) left: Vec<f64>,
+    /// Those.
+    pub(in crate::analysis::response) rows: Vec<f64>,
+    /// F's slopes by every control, row by row.
+    by_controls: Vec<f64>,
+}
+
+/// The kernel of Fₓ at a point where it is nearly singular.
 pub(in crate::analysis::response) fn kernel_at(
-    equations: &Equations,
-    face: &Face,
+    tape: &Tape,
+    values: &[f64],
     sizes: &Sizes,
     free: &[f64],
-) -> Option<([Vec<f64>; 2], Vec<f64>, Vec<f64>)> {
-    let m = face.moving.len();
-    let (by_species, by_controls) = face_slopes(equations, face, free)?;
+) -> Option<Null> {
+    let m = tape.outputs();
+    let (by_species, by_controls) = face_slopes(tape, values, free)?;
     let rows = row_sizes(&by_species, &sizes.moving);
     let scaled: Vec<f64> = (0..m * m).map(|k| by_species[k] * sizes.moving[k % m] / rows[k / m]).collect();
-    Some((kernel(&scaled, m)?, rows, by_controls))
+    let [right, left] = kernel(&scaled, m)?;
+    Some(Null { right, left, rows, by_controls })
 }
 
 /// Whether the control's direction does turn: at a crossing the control does not push the state along the left vector.
 fn is_fold(equations: &Equations, face: &Face, sizes: &Sizes, root: &Root) -> bool {
     let free = face.moving.len() + equations.controls.len();
-    let Some(([_, left], rows, by_controls)) = kernel_at(equations, face, sizes, &root.at[..free]) else {
-        return false;
-    };
+    let tape = equations.tape(face);
+    let found = kernel_at(&tape, &equations.values, sizes, &root.at[..free]);
+    let Some(Null { left, rows, by_controls, .. }) = found else { return false };
     let k = equations.controls.len();
     let push = |control: usize| {
         let push: Vec<f64> = (0..rows.len()).map(|i| by_controls[i * k + control] / rows[i]).collect();
@@ -148,12 +160,13 @@ fn crossing(
 ) -> Option<ThresholdKind> {
     debug_assert!(system.shape == Shape::Crossing, "{:?}", system.shape);
     let (m, free) = (face.moving.len(), system.free());
-    let ([right, left], rows, _) = kernel_at(equations, face, sizes, &root.at[..free])?;
+    let (tape, values) = (equations.tape(face), &equations.values);
+    let Null { right, left, rows, .. } = kernel_at(&tape, values, sizes, &root.at[..free])?;
     let beta = root.at[free + m];
     if (0..m).any(|i| (beta * root.at[free + i]).abs() > IMPERFECT * rows[i]) {
         return None;
     }
-    let [second, third] = along(equations, face, &right, sizes, &root.at[..free])?;
+    let [second, third] = along(&tape, values, &right, sizes, &root.at[..free])?;
     let scaled = |terms: &[f64], i: usize| left[i] * terms[i] / rows[i];
     let quadratic: f64 = (0..m).map(|i| scaled(&second, i)).sum();
     let terms: f64 = (0..m).map(|i| scaled(&second, i).abs() + scaled(&third, i).abs()).sum();
@@ -163,15 +176,14 @@ fn crossing(
 
 /// Second and third Taylor coefficients of F along a direction, given in the sizes of species.
 pub(in crate::analysis::response) fn along(
-    equations: &Equations,
-    face: &Face,
+    tape: &Tape,
+    values: &[f64],
     direction: &[f64],
     sizes: &Sizes,
     free: &[f64],
 ) -> Option<[Vec<f64>; 2]> {
-    let tape = equations.tape(face);
     let still = |value: &f64| Jet::line(*value, 0.0);
-    let mut run = tape.start(&equations.values.iter().map(still).collect::<Vec<_>>());
+    let mut run = tape.start(&values.iter().map(still).collect::<Vec<_>>());
     let moved = direction.iter().zip(&sizes.moving).map(|(v, size)| v * size);
     let line: Vec<Jet<f64>> =
         free.iter().zip(moved.chain(std::iter::repeat(0.0))).map(|(&x, v)| Jet::line(x, v)).collect();

@@ -88,7 +88,8 @@ pub struct Located {
 
 /// Which system defines what, and on which face.
 struct Compiled {
-    moving: Vec<usize>,
+    /// With its rows, for several smooth pieces of a branch may have the same species.
+    face: Face,
     sign: Sign,
     /// Which control moves, where that matters.
     control: usize,
@@ -153,9 +154,8 @@ impl Locator {
     /// The compiled system of a face and a sign; that of a crossing is one for each control.
     pub(super) fn place(&mut self, equations: &mut Equations, face: &Face, sign: &Sign, control: usize) -> usize {
         let control = if *sign == Sign::Crossing { control } else { 0 };
-        let is_same = |compiled: &Compiled| {
-            compiled.moving == face.moving && compiled.sign == *sign && compiled.control == control
-        };
+        let is_same =
+            |compiled: &Compiled| compiled.sign == *sign && compiled.control == control && compiled.face == *face;
         if let Some(place) = self.compiled.iter().position(is_same) {
             return place;
         }
@@ -164,13 +164,13 @@ impl Locator {
             _ => face.moving.clone(),
         };
         let system = compiled(equations, face, sign, control);
-        self.compiled.push(Compiled { moving: face.moving.clone(), sign: sign.clone(), control, system, over });
+        self.compiled.push(Compiled { face: face.clone(), sign: sign.clone(), control, system, over });
         self.compiled.len() - 1
     }
 
     /// Who moves in the system at a place.
     pub(super) fn moving(&self, place: usize) -> Option<&[usize]> {
-        self.compiled.get(place).map(|compiled| &compiled.moving[..])
+        self.compiled.get(place).map(|compiled| &compiled.face.moving[..])
     }
 
     /// The system at a place, and the species that its matrix is over.
@@ -182,20 +182,6 @@ impl Locator {
 
 /// The system that defines what a change of sign is about; `None` where a row or a derivative has no value on the face.
 fn compiled(equations: &mut Equations, face: &Face, sign: &Sign, control: usize) -> Option<Defining> {
-    let (rows, balance) = (equations.rows.clone(), equations.balance.clone());
-    let divided = equations.divided.clone();
-    let pair = |equations: &mut Equations, absent: &Option<Vec<usize>>, shift: f64| -> Option<Matrix> {
-        let matrix = match absent {
-            None => Matrix::of_rows(equations, &rows, face)?,
-            // A divided row of a map is its multiplier less 1.
-            Some(absent) => {
-                let matrix = Matrix::of_absent(equations, &balance, &divided, absent, face)?;
-                let own = if equations.step.is_some() { 1.0 } else { 0.0 };
-                matrix.shifted(&mut equations.graph, own)
-            }
-        };
-        Some(if shift == 0.0 { matrix } else { matrix.shifted(&mut equations.graph, shift) })
-    };
     Some(match sign {
         Sign::Turn => {
             let matrix = Matrix::of_face(equations, face);
@@ -206,37 +192,31 @@ fn compiled(equations: &mut Equations, face: &Face, sign: &Sign, control: usize)
             Defining::plain(equations, face, x)
         }
         Sign::Side(i, which) => {
-            let side = *equations.sides.get(*i)?.get(*which)?;
+            let side = equations.sides.get(*i)?.get(*which).copied().filter(|side| side.is_finite())?;
             let (x, side) = (equations.graph.state(*i), equations.graph.constant(side));
             let beyond = equations.graph.sub(x, side);
             Defining::plain(equations, face, beyond)
         }
-        Sign::Growth(i) => match divided[*i] {
-            Some(growth) => {
-                let growth = at_face(equations, &[growth], face)?[0];
-                Defining::plain(equations, face, growth)
-            }
-            None => {
-                let matrix = Matrix::of_absent(equations, &balance, &divided, &[*i], face)?;
-                Defining::plain(equations, face, matrix.entries[0])
-            }
-        },
+        Sign::Growth(i) => {
+            let growth = Matrix::of_absent(equations, &[*i], face)?.entries[0];
+            Defining::plain(equations, face, growth)
+        }
         Sign::Block(absent) => {
-            let matrix = Matrix::of_absent(equations, &balance, &divided, absent, face)?;
+            let matrix = Matrix::of_absent(equations, absent, face)?;
             Defining::kernel(equations, face, &matrix)
         }
         Sign::Crossing => Defining::crossing(equations, face, control),
         Sign::Pair(absent) => {
-            let matrix = pair(equations, absent, 0.0)?;
+            let matrix = jacobian(equations, face, absent.as_deref())?;
             Defining::pair(equations, face, &matrix)
         }
         Sign::Flip(absent) => {
-            let matrix = pair(equations, absent, 1.0)?;
+            let matrix = jacobian(equations, face, absent.as_deref())?.shifted(&mut equations.graph, 1.0);
             Defining::kernel(equations, face, &matrix)
         }
         Sign::Kink(node) => {
-            let [a, b, piece] = sides_of(equations, *node)?;
-            let rows = equations.graph.replaced(&face.rows, *node, piece);
+            let ((a, b), [piece, _]) = (compared(equations, *node)?, pieces(equations, *node)?);
+            let rows = equations.graph.replaced(&face.rows, &[(*node, piece)]);
             let smooth = Face { rows, ..face.clone() };
             let difference = equations.graph.sub(a, b);
             let difference = at_face(equations, &[difference], face)?[0];
@@ -245,11 +225,16 @@ fn compiled(equations: &mut Equations, face: &Face, sign: &Sign, control: usize)
     })
 }
 
-/// The two quantities that a node compares, and what it is where they are equal and on one side.
-fn sides_of(equations: &mut Equations, node: NodeId) -> Option<[NodeId; 3]> {
-    let [first, _] = pieces(equations, node)?;
-    let (a, b) = compared(equations, node)?;
-    Some([a, b, first])
+/// The Jacobian of the rates, or of the next state, of those who move or of some who are absent.
+fn jacobian(equations: &mut Equations, face: &Face, absent: Option<&[usize]>) -> Option<Matrix> {
+    match absent {
+        None => Matrix::of_rows(equations, face),
+        // What is 0 at a map's equilibrium is the next state less the state.
+        Some(absent) if equations.step.is_some() => {
+            Some(Matrix::of_absent(equations, absent, face)?.shifted(&mut equations.graph, 1.0))
+        }
+        Some(absent) => Matrix::of_absent(equations, absent, face),
+    }
 }
 
 /// The two quantities that a node with a kink compares; `None` for any other.
