@@ -12,6 +12,7 @@ mod closest;
 mod front;
 mod located;
 mod margins;
+mod pictures;
 mod plot;
 mod setting;
 mod support;

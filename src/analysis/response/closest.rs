@@ -7,11 +7,13 @@
 //! Goldfarb & Shanno 1970), until d and n agree. What comes out is a local minimum; that there is none nearer is not
 //! proved. Start at [`closest`].
 
-use super::margins::{Setting, is_loss};
+use super::ClosestEdge;
+use super::margins::{Mover, Setting, is_loss};
 use super::ray::Course;
 use super::surface::{Hit, Surface};
-use super::{Band, ClosestEdge};
+use crate::analysis::equilibria::Equilibrium;
 use crate::analysis::passage::dot;
+use crate::analysis::subject::Subject;
 use crate::num::random::Source;
 
 /// Directions that are drawn, beside those along parameters.
@@ -40,10 +42,39 @@ struct Least {
     residual: f64,
 }
 
-/// The closest edge found, and how many starts led to it.
-pub(super) fn closest(setting: &mut Setting<'_>, which: usize, bands: &[Band]) -> Option<(ClosestEdge, usize)> {
+/// The closest edge found, and how many starts led to it; movers along which the state is lost soonest come first.
+///
+/// A parameter that is 0 and can only grow, such as a quota of nothing or a restocking, is held at first, for with it no
+/// abundance need go through 0 any more; then each of these moves with all others, at last all of them.
+pub(super) fn closest(
+    subject: &Subject<'_>,
+    start: &Equilibrium,
+    movers: &[Mover],
+    stop: &dyn Fn() -> bool,
+) -> Option<(ClosestEdge, usize)> {
+    let (idle, moving): (Vec<&Mover>, Vec<&Mover>) =
+        movers.iter().partition(|mover| mover.present == 0.0 && mover.limits[0] == 0.0);
+    let with = |added: &[&Mover]| -> Vec<Mover> { moving.iter().chain(added).map(|mover| **mover).collect() };
+    let mut rounds = vec![(with(&[]), 0)];
+    rounds.extend(idle.iter().map(|&one| (with(&[one]), 1)));
+    if idle.len() > 1 {
+        rounds.push((with(&idle), idle.len()));
+    }
+    let mut best: Option<(ClosestEdge, usize)> = None;
+    for (movers, added) in rounds.into_iter().filter(|(movers, _)| !movers.is_empty()) {
+        let Some(mut setting) = Setting::new(subject, start, &movers, stop) else { continue };
+        let Some((least, count)) = least(&mut setting, added) else { continue };
+        if best.as_ref().is_none_or(|(best, _)| least.hit.t < best.distance) {
+            best = Some((edge(&setting, &least), count));
+        }
+    }
+    best
+}
+
+/// The least distance found, and how many starts led to it; the last `added` of the movers are 0 at present.
+fn least(setting: &mut Setting<'_>, added: usize) -> Option<(Least, usize)> {
     let mut found: Vec<(Least, usize)> = Vec::new();
-    for direction in starts(setting, bands) {
+    for direction in starts(setting.movers.len(), added) {
         if (setting.stop)() {
             break;
         }
@@ -53,21 +84,22 @@ pub(super) fn closest(setting: &mut Setting<'_>, which: usize, bands: &[Band]) -
             None => found.push((new, 1)),
         }
     }
-    let (least, count) = found.into_iter().min_by(|a, b| a.0.hit.t.total_cmp(&b.0.hit.t))?;
-    Some((edge(setting, which, &least), count))
+    found.into_iter().min_by(|a, b| a.0.hit.t.total_cmp(&b.0.hit.t))
 }
 
-fn edge(setting: &Setting<'_>, which: usize, least: &Least) -> ClosestEdge {
+fn edge(setting: &Setting<'_>, least: &Least) -> ClosestEdge {
     let located = &least.hit.located;
     let controls = &located.point[located.point.len() - setting.movers.len()..];
-    let is_within = |(mover, value): (&super::margins::Mover, &f64)| {
+    let is_within = |(mover, value): (&Mover, &f64)| {
         let room = SAME * mover.width();
         (mover.range[0] - room..=mover.range[1] + room).contains(value)
     };
+    let mut values: Vec<_> = setting.movers.iter().map(|mover| mover.parameter).zip(controls.iter().copied()).collect();
+    values.sort_by_key(|(parameter, _)| *parameter);
     ClosestEdge {
-        equilibrium: which,
+        equilibrium: 0,
         kind: located.kind,
-        values: setting.movers.iter().map(|mover| mover.parameter).zip(controls.iter().copied()).collect(),
+        values,
         distance: least.hit.t,
         state: located.state.clone(),
         residual: least.residual,
@@ -80,16 +112,14 @@ fn is_same(a: &Least, b: &Least) -> bool {
     a.hit.located.kind == b.hit.located.kind && (a.hit.t - b.hit.t).abs() <= SAME * a.hit.t && off.sqrt() <= SAME.sqrt()
 }
 
-/// Along each parameter both ways, all together, and drawn ones.
-fn starts(setting: &Setting<'_>, bands: &[Band]) -> Vec<Vec<f64>> {
-    let k = setting.movers.len();
+/// Along each of k parameters both ways, all together, and drawn ones. The last `added` only grow, and only where they do is
+/// there anything new.
+fn starts(k: usize, added: usize) -> Vec<Vec<f64>> {
     let mut starts = Vec::new();
-    // Parameters along which the state is lost soonest come first, so that an early stop has seen the best of them.
-    let order = bands.iter().filter_map(|band| setting.movers.iter().position(|m| m.parameter == band.parameter));
-    for place in order {
-        for sign in [-1.0, 1.0] {
+    for place in k.saturating_sub(if added == 0 { k } else { added })..k {
+        for sign in if added == 0 { &[-1.0, 1.0][..] } else { &[1.0] } {
             let mut direction = vec![0.0; k];
-            direction[place] = sign;
+            direction[place] = *sign;
             starts.push(direction);
         }
     }
@@ -98,7 +128,11 @@ fn starts(setting: &Setting<'_>, bands: &[Band]) -> Vec<Vec<f64>> {
         starts.extend([vec![equal; k], vec![-equal; k]]);
         let mut source = Source::new(SEED);
         let mut draw = || -> Vec<f64> { (0..k).map(|_| source.between(-1.0, 1.0)).collect() };
-        starts.extend((0..DRAWN).filter_map(|_| unit(draw())));
+        let drawn = if added == 0 { DRAWN } else { DRAWN / 2 };
+        starts.extend((0..drawn).filter_map(|_| unit(draw())));
+    }
+    for start in &mut starts {
+        start[k - added..].iter_mut().for_each(|part| *part = part.abs());
     }
     starts
 }
@@ -124,7 +158,7 @@ fn descend(setting: &mut Setting<'_>, mut direction: Vec<f64>) -> Option<Least> 
 
 /// Where the state is lost along a direction, no further than `far`.
 fn first_hit(setting: &mut Setting<'_>, direction: &[f64], far: f64) -> Option<Hit> {
-    let bound = |(mover, part): (&super::margins::Mover, &f64)| {
+    let bound = |(mover, part): (&Mover, &f64)| {
         let limit = if *part > 0.0 { mover.limits[1] } else { mover.limits[0] };
         if *part == 0.0 { f64::INFINITY } else { (limit - mover.present) / (part * mover.width()) }
     };

@@ -10,7 +10,7 @@ use super::locate::describe::Describer;
 use super::locate::{Event, Located, Locator, Sign};
 use super::ray::{Course, Ray, scales};
 use super::watch::Watch;
-use super::{Arm, Band, Edge, Margins, Threshold, ThresholdKind};
+use super::{Arm, Band, ClosestEdge, Edge, Margins, Threshold, ThresholdKind};
 use crate::analysis::equilibria::{Budget, Equilibrium};
 use crate::analysis::subject::Subject;
 use crate::expr::graph::Operation;
@@ -72,41 +72,43 @@ impl Setting<'_> {
 /// range. Once the budget's `stop` says so the rest counts as not followed.
 pub fn margins(subject: &mut Subject<'_>, list: &[Equilibrium], which: usize, budget: &Budget<'_>) -> Margins {
     let stop = || (budget.stop)();
-    let Some(mut setting) = setting(subject, list, which, &stop) else { return Margins::default() };
-    let mut bands: Vec<Band> = (0..setting.movers.len()).map(|place| band(&mut setting, which, place)).collect();
-    let distance = |band: &Band| {
-        let width = |mover: &Mover| if mover.parameter == band.parameter { mover.width() } else { f64::NAN };
-        let width = setting.movers.iter().map(width).find(|width| !width.is_nan()).unwrap_or(f64::NAN);
-        band.margin().map_or(f64::INFINITY, |(distance, _)| distance / width)
-    };
+    let Some(start) = list.get(which) else { return Margins::default() };
+    let movers = movers(subject);
+    let mut bands: Vec<(Mover, Band)> = Vec::new();
+    for &mover in &movers {
+        // Each with equations of its own: other parameters that are 0 then take their terms with them.
+        let Some(mut setting) = Setting::new(subject, start, &[mover], &stop) else { return Margins::default() };
+        bands.push((mover, band(&mut setting, which)));
+    }
+    let distance =
+        |(mover, band): &(Mover, Band)| band.margin().map_or(f64::INFINITY, |(distance, _)| distance / mover.width());
     bands.sort_by(|a, b| distance(a).total_cmp(&distance(b)));
-    let closest = closest::closest(&mut setting, which, &bands);
-    Margins { bands, closest }
+    let (movers, bands): (Vec<Mover>, Vec<Band>) = bands.into_iter().unzip();
+    let closest = closest::closest(subject, start, &movers, &stop);
+    Margins { bands, closest: closest.map(|(edge, count)| (ClosestEdge { equilibrium: which, ..edge }, count)) }
 }
 
-/// `None` where there is nothing to be moved, or the state is not stable.
-fn setting<'s>(
-    subject: &mut Subject<'_>,
-    list: &[Equilibrium],
-    which: usize,
-    stop: &'s dyn Fn() -> bool,
-) -> Option<Setting<'s>> {
-    let start = list.get(which)?;
-    let movers = movers(subject);
-    if movers.is_empty() {
-        return None;
+impl<'s> Setting<'s> {
+    /// `None` where the state is not stable, or cannot be followed.
+    pub(super) fn new(
+        subject: &Subject<'_>,
+        start: &Equilibrium,
+        movers: &[Mover],
+        stop: &'s dyn Fn() -> bool,
+    ) -> Option<Self> {
+        let controls: Vec<ParameterId> = movers.iter().map(|mover| mover.parameter).collect();
+        let mut equations = Equations::new(subject, &controls);
+        let present: Vec<bool> = (0..start.state.len()).map(|i| start.has(i)).collect();
+        let footing = Footing::new(&mut equations, &present)?;
+        let watch = Watch::new(&mut equations, &footing.face)?;
+        let x: Vec<f64> = footing.face.moving.iter().map(|&i| start.state[i]).collect();
+        let inputs: Vec<f64> = x.iter().copied().chain(movers.iter().map(|mover| mover.present)).collect();
+        let seen = watch.at(&inputs)?;
+        let describer = Describer::new(subject, &controls);
+        let movers = movers.to_vec();
+        let setting = Self { equations, locator: Locator::new(), describer, footing, watch, movers, x, stop };
+        setting.watch.is_stable(&seen).then_some(setting)
     }
-    let controls: Vec<ParameterId> = movers.iter().map(|mover| mover.parameter).collect();
-    let mut equations = Equations::new(subject, &controls);
-    let present: Vec<bool> = (0..start.state.len()).map(|i| start.has(i)).collect();
-    let footing = Footing::new(&mut equations, &present)?;
-    let watch = Watch::new(&mut equations, &footing.face)?;
-    let x: Vec<f64> = footing.face.moving.iter().map(|&i| start.state[i]).collect();
-    let inputs: Vec<f64> = x.iter().copied().chain(movers.iter().map(|mover| mover.present)).collect();
-    let seen = watch.at(&inputs)?;
-    let describer = Describer::new(subject, &controls);
-    let setting = Setting { equations, locator: Locator::new(), describer, footing, watch, movers, x, stop };
-    setting.watch.is_stable(&seen).then_some(setting)
 }
 
 /// Parameters with a range that are used by the equations, in the file's order.
@@ -119,16 +121,18 @@ fn movers(subject: &Subject<'_>) -> Vec<Mover> {
     }
     let mover = |(i, parameter): (usize, &Parameter)| {
         let range = parameter.range.as_ref()?.value;
-        let limits = [parameter.min.unwrap_or(f64::NEG_INFINITY), parameter.max.unwrap_or(f64::INFINITY)];
         let present = subject.plan.values[i];
+        // A range that begins at 0 is of something that has no values below.
+        let least = if range[0] == 0.0 && present >= 0.0 { 0.0 } else { f64::NEG_INFINITY };
+        let limits = [parameter.min.map_or(least, |min| min.max(least)), parameter.max.unwrap_or(f64::INFINITY)];
         (used[i] && range[0] < range[1]).then_some(Mover { parameter: ParameterId(i), present, range, limits })
     };
     subject.model.parameters.iter().enumerate().filter_map(mover).collect()
 }
 
-/// The band along one parameter.
-fn band(setting: &mut Setting<'_>, which: usize, place: usize) -> Band {
-    let mover = setting.movers[place];
+/// The band along the one parameter that moves.
+fn band(setting: &mut Setting<'_>, which: usize) -> Band {
+    let mover = setting.movers[0];
     let mut band = Band {
         equilibrium: which,
         parameter: mover.parameter,
@@ -140,10 +144,8 @@ fn band(setting: &mut Setting<'_>, which: usize, place: usize) -> Band {
     for side in 0..2 {
         let sign = if side == 0 { -1.0 } else { 1.0 };
         let room = (sign * (mover.range[side] - mover.present) / mover.width()).max(0.0);
-        let mut direction = vec![0.0; setting.movers.len()];
-        direction[place] = sign;
         let at = |t: f64| mover.present + sign * t * mover.width();
-        match setting.follow(&direction, room) {
+        match setting.follow(&[sign], room) {
             // A present value beyond the range has the range's end on one side behind it.
             Course::Reached if room > 0.0 => band.ends[side] = mover.range[side],
             Course::Reached => {}

@@ -194,13 +194,11 @@ impl<'f> Ray<'_, 'f> {
     fn along(&self, located: &Located) -> f64 {
         let line = &self.standing.line;
         let controls = &located.point[located.point.len() - line.direction.len()..];
-        let most = (0..controls.len()).max_by(|&i, &j| line.direction[i].abs().total_cmp(&line.direction[j].abs()));
-        most.map_or(f64::NAN, |most| {
-            // Widths differ by powers of ten; the control that moves most in its own digits tells best.
-            let share = |j: usize| (line.direction[j] / line.base[j].abs().max(line.direction[j].abs())).abs();
-            let best = (0..controls.len()).max_by(|&i, &j| share(i).total_cmp(&share(j))).unwrap_or(most);
-            (controls[best] - line.base[best]) / line.direction[best]
-        })
+        // Of all that move, the one that does so most in its own digits tells best.
+        let share = |j: &usize| (line.direction[*j] / line.base[*j].abs().max(line.direction[*j].abs())).abs();
+        let moving = (0..controls.len()).filter(|&j| line.direction[j] != 0.0);
+        let best = moving.max_by(|i, j| share(i).total_cmp(&share(j)));
+        best.map_or(f64::NAN, |best| (controls[best] - line.base[best]) / line.direction[best])
     }
 
     /// Beyond something that no step gets over: a sound state close by with t a little larger, or what the kink did.

@@ -108,4 +108,17 @@ mod tests {
         assert_eq!(*run.output(0), 3.0 * (0.5 + 6.0 + 28.0));
         assert_eq!(run.gradient(0), Some(&[0.5 + 12.0 + 28.0, 21.0, 12.0][..]));
     }
+
+    /// A loss of x of which a share (1 − a)^b is spared, a moving: absence of x stays absence, whatever has no value at a > 1.
+    #[test]
+    fn what_a_moving_parameter_leaves_undefined_vanishes_all_the_same() {
+        let mut graph = Graph::new(1, vec![Interval::new(0.0, 0.9), Interval::new(1.0, 3.0)]);
+        let (x, a, b, one) = (graph.state(0), graph.parameter(0), graph.parameter(1), graph.one());
+        let spared = graph.sub(one, a);
+        let spared = graph.pow(spared, b);
+        let row = graph.mul(x, spared);
+        let mut wide = graph.widened(&[row], &[0], 0);
+        assert!(wide.graph.vanishes_at_zero(wide.nodes[0], 0));
+        assert!(!wide.graph.vanishes_at_zero(wide.nodes[0], 1));
+    }
 }
