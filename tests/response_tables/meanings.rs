@@ -110,7 +110,7 @@ fn transcritical_thresholds_say_who_invades_and_who_is_lost() {
     check(
         1.0,
         &cross(false, [NODE, SADDLE, NODE]),
-        "κοδ cannot persist at rest above E = 1.500: κοδ dwindles to 0 there",
+        "κοδ cannot persist at rest above E = 1.500: it dwindles to 0 there",
     );
     check_crowded(1.0, &cross(false, [NODE, SADDLE, NODE]), "κοδ dwindles to 0 at E = 1.500");
     check(

@@ -133,12 +133,17 @@ impl Sentence<'_> {
         if lost.is_empty() {
             return None;
         }
-        let (lost, side, here) = (listed(&lost), side(above), self.here());
-        Some(if self.may_lack(above) {
+        Some(self.never(&listed(&lost), above))
+    }
+
+    /// That nobody of that name has a state of rest on that side, as far as that is known.
+    fn never(&self, lost: &str, above: bool) -> String {
+        let (side, here) = (side(above), self.here());
+        if self.may_lack(above) {
             format!("no state with {lost} was found {side} {here}")
         } else {
             format!("{lost} cannot persist at rest {side} {here}")
-        })
+        }
     }
 }
 
@@ -195,6 +200,7 @@ impl Sentence<'_> {
             (Some(true), ..) => {
                 let lost = with.first().and_then(|arm| self.losers(arm, !above));
                 match lost {
+                    Some(lost) if lost == self.never(name, !above) => format!("{lost}: it dwindles to 0 there"),
                     Some(lost) => format!("{lost}: {name} dwindles to 0 there"),
                     None => format!("{name} dwindles to 0 at {here}"),
                 }

@@ -127,7 +127,7 @@ fn closest(one: &One<'_>, edge: &ClosestEdge, starts: usize) -> String {
         starts => format!("{starts} starts led there"),
     };
     format!(
-        "With all of them moved together the nearest loss found is a {} at {}{outside}: a move of {}, each parameter in \
+        "With all of them moved together the nearest loss found ({}) is at {}{outside}: a move of {}, each parameter in \
          widths of its range ({}; {led}, and there may be a nearer one).",
         kind(edge.kind),
         sheets::values(one, &edge.values),
