@@ -4,16 +4,20 @@
 use restpoint::analysis::equilibria::{Budget, Equilibrium, OneByOne, Problem, all};
 use restpoint::analysis::linearise::{Kind, Lineariser};
 use restpoint::analysis::prepare::Prepared;
-use restpoint::analysis::response::{Branch, Control, Ending, Response, ThresholdKind, respond};
+use restpoint::analysis::response::{Branch, Control, Ending, Response, Threshold, ThresholdKind, respond};
 use restpoint::analysis::subject::Subject;
 use restpoint::model::{Model, ParameterId};
 use restpoint::num::random::Source;
 
+use crate::common::cases;
 use crate::common::text::ModelText;
 use crate::setting::{control, subject};
+use crate::thresholds::{kind, published};
 
 /// Values of the control at thresholds, and states there, relative.
 const NEAR: f64 = 1e-10;
+/// The same of published ones.
+const PUBLISHED: f64 = 1e-8;
 
 fn budget<'b>() -> Budget<'b> {
     Budget { boxes: 5_000, stop: &|| false, workers: &OneByOne, observer: None }
@@ -126,6 +130,39 @@ fn one_species_in_closed_form() {
         3,
         false,
     );
+}
+
+/// Every published threshold of one parameter is on the picture around it, as a threshold of its kind, whatever branch it
+/// lies on.
+#[test]
+fn published_thresholds_are_on_the_picture() {
+    let mut missed = Vec::new();
+    let mut count = 0;
+    for case in cases::all() {
+        for published in published(&case) {
+            let mut read = case.text().read();
+            let mut subject = subject(&mut read);
+            let reach = 0.4 * published.at.abs();
+            let control = control(&subject, published.parameter, published.at - reach, published.at + reach);
+            let list = found(&mut subject);
+            let response = respond(&mut subject, &control, &list, &budget(), &mut |_| ());
+            let is_it = |found: &Threshold| {
+                let most = published.state.iter().fold(1e-9f64, |most, x| most.max(x.abs()));
+                let at = (found.at - published.at).abs() <= PUBLISHED * published.at.abs();
+                let near = |(a, b): (&f64, &f64)| (a - b).abs() <= PUBLISHED * most;
+                at && found.state.iter().zip(&published.state).all(near) && found.kind == kind(&published)
+            };
+            count += 1;
+            if !response.thresholds.iter().any(is_it) {
+                let all: Vec<_> = response.thresholds.iter().map(|t| (t.kind, t.at, t.state.clone())).collect();
+                missed.push(format!(
+                    "{} {} {} = {} at {:?}: {all:?}",
+                    case.id, published.kind, published.parameter, published.at, published.state
+                ));
+            }
+        }
+    }
+    assert!(missed.is_empty() && count >= 45, "{} of {count} missed:\n{}", missed.len(), missed.join("\n"));
 }
 
 /// Prey and predator of Lotka (1925) and Volterra (1926): a centre all along, and nowhere a Hopf threshold.

@@ -74,6 +74,13 @@ pub(super) struct Typed {
     pub(super) together: f64,
 }
 
+impl Sample {
+    /// The control's value.
+    pub(super) fn control(&self) -> f64 {
+        self.at.last().copied().unwrap_or_default()
+    }
+}
+
 impl<'p> Curve<'p> {
     /// Of a piece under these parameters, its control varied over `width`.
     pub(super) fn new(piece: &'p Piece, parameters: &'p [f64], width: f64, is_map: bool) -> Self {
@@ -206,6 +213,14 @@ impl<'p> Curve<'p> {
     }
 }
 
+/// Brings a vector that is not 0 to length 1.
+pub(super) fn normalise(vector: &mut [f64]) {
+    let length = dot(vector, vector).sqrt();
+    for x in vector {
+        *x /= length;
+    }
+}
+
 /// Σ a_i b_i
 pub(super) fn dot(a: &[f64], b: &[f64]) -> f64 {
     a.iter().zip(b).map(|(a, b)| a * b).sum()
@@ -218,7 +233,9 @@ fn solve(a: &mut [f64], n: usize, out: &mut [Vec<f64>; 2]) -> Option<f64> {
     let mut sign = 1.0;
     for row in a.chunks_exact_mut(width) {
         let largest = row[..n].iter().fold(0.0f64, |most, x| most.max(x.abs()));
-        row.iter_mut().for_each(|x| *x /= largest);
+        for x in row {
+            *x /= largest;
+        }
     }
     for k in 0..n {
         let mut place = k;

@@ -20,6 +20,9 @@ use super::{Control, Ending, Point, Threshold};
 
 /// Branches and starts that are followed at most.
 const MOST_BRANCHES: usize = 400;
+/// What lies between two meetings of one threshold is one place with it when it is this share of an abundance, and of the
+/// range, off.
+const ONE_PLACE: f64 = 1e-3;
 /// Pieces that one branch runs through at most, each way.
 const MOST_LEGS: usize = 60;
 /// An abundance this share of the box below 0, or beyond its sides, is there by rounding.
@@ -102,7 +105,7 @@ impl<'e> Picture<'e> {
             return true;
         }
         let Some((piece, sample)) = self.set_out(start, &present) else { return false };
-        if start.across.is_some() && self.passes(&present, &self.whole(&piece, &sample.at), self.control_of(&sample)) {
+        if start.across.is_some() && self.passes(&present, &self.whole(&piece, &sample.at), sample.control()) {
             return true;
         }
         let (mut points, end) = self.go(piece.clone(), sample.clone(), Some(sample.clone()));
@@ -123,18 +126,40 @@ impl<'e> Picture<'e> {
         if end == Ending::Closed {
             all.push(first);
         }
+        self.gather(&mut all);
         let n = self.equations.species;
         let peaks = (0..n).map(|i| all.iter().fold(0.0f64, |most, point| most.max(point.state[i].abs()))).collect();
         self.branches.push(Followed { present, points: all, ends, peaks });
         true
     }
 
-    fn width(&self) -> f64 {
-        self.control.to - self.control.from
+    /// Leaves of a threshold that was met several times in one place, as where branches cross, one point: what lies between
+    /// is too near to it to be told from it.
+    fn gather(&self, points: &mut Vec<Point>) {
+        let sides = &self.equations.sides;
+        let is_one = |a: &Point, b: &Point| {
+            let near = |i: usize| {
+                (a.state[i] - b.state[i]).abs() <= ONE_PLACE * a.state[i].abs().max(1e-3 * sides[i][1].abs())
+            };
+            (a.at - b.at).abs() <= ONE_PLACE * self.width() && (0..a.state.len()).all(near)
+        };
+        let mut kept: Vec<Point> = Vec::with_capacity(points.len());
+        for point in points.drain(..) {
+            let last = kept.iter().rposition(|known| known.threshold.is_some());
+            if let Some(last) = last
+                && point.threshold.is_some()
+                && kept[last].threshold == point.threshold
+                && kept[last..].iter().all(|between| is_one(between, &point))
+            {
+                kept.truncate(last);
+            }
+            kept.push(point);
+        }
+        *points = kept;
     }
 
-    fn control_of(&self, sample: &Sample) -> f64 {
-        sample.at[sample.at.len() - 1]
+    fn width(&self) -> f64 {
+        self.control.to - self.control.from
     }
 
     fn is_map(&self) -> bool {
@@ -247,7 +272,7 @@ impl<'e> Picture<'e> {
         let taking =
             |place: &Option<usize>| place.map(|place| sample.beside[place]).filter(|amount| amount.is_finite());
         Point {
-            at: self.control_of(sample),
+            at: sample.control(),
             kind: sample.typed.light.map(|light| light.kind),
             stable: sample.typed.light.and_then(|light| light.stable),
             leading: sample.typed.leading,

@@ -28,7 +28,7 @@ pub fn respond(
     let describer = Describer::new(subject, &[control.parameter]);
     let stop: &dyn Fn() -> bool = &|| (budget.stop)();
     let mut picture = Picture::new(&mut equations, control, describer, stop);
-    if !(control.from < control.to) {
+    if control.from.partial_cmp(&control.to) != Some(std::cmp::Ordering::Less) {
         return picture.response(&[]);
     }
     let symbols: Vec<String> = subject.model.species.iter().map(|species| species.symbol.clone()).collect();

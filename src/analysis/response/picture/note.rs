@@ -6,7 +6,7 @@ use nalgebra::Complex;
 
 use super::{Picture, Start};
 use crate::analysis::response::curve::{Curve, Sample};
-use crate::analysis::response::locate::{self, Located, Sign};
+use crate::analysis::response::locate::{self, Located};
 use crate::analysis::response::piece::Piece;
 use crate::analysis::response::switch::Meaning;
 use crate::analysis::response::walk::Event;
@@ -16,7 +16,10 @@ use crate::model::SpeciesId;
 /// Thresholds nearer to each other than these are one: share of the range, and of each abundance.
 const SAME: [f64; 2] = [1e-6, 1e-4];
 
-/// Beyond so many species only what meets a stable state is followed: each of the others meets as many again.
+/// A defining system's root further than this share of the range from where an event was bracketed is another's.
+const HERE: f64 = 1e-5;
+/// Beyond so many species only thresholds of stable states are looked for and followed: each of the others meets as many
+/// again.
 const LARGE: usize = 8;
 /// An eigenvalue this near to the border, as a share of the largest, is critical at a threshold.
 const CRITICAL: f64 = 1e-5;
@@ -38,13 +41,13 @@ impl Picture<'_> {
         if !self.is_feasible(&state) {
             return None;
         }
+        if self.equations.species > LARGE && !self.bounds_stable(event) {
+            return None;
+        }
         let found = self.threshold(piece, sample, event, beyond, &meaning, state);
         let mut direction = vec![0.0; self.equations.species + 1];
         piece.moving.iter().zip(&sample.direction).for_each(|(&i, &part)| direction[i] = part);
         direction[self.equations.species] = sample.direction[piece.moving.len()];
-        if self.equations.species > LARGE && !self.bounds_stable(event) {
-            return Some(self.merged(found));
-        }
         for (present, is_across) in meaning.leads_to {
             let across = is_across.then(|| direction.clone());
             self.starts.push_back(Start { present, state: found.state.clone(), control: found.at, across });
@@ -69,20 +72,21 @@ impl Picture<'_> {
         meaning: &Meaning,
         state: Vec<f64>,
     ) -> Threshold {
-        if let Some(sign) = meaning.sign.clone()
-            && let Some((found, event)) = self.located(piece, sign, sample, event)
-        {
-            let event = locate::Event { face: &piece.face, sign: event, before: &found.1[0], after: &found.1[1] };
-            let mut threshold = self.describer.threshold(self.equations, &event, &found.0);
-            if meaning.kind == ThresholdKind::Pitchfork {
-                threshold.kind = meaning.kind;
+        if let Some(sign) = meaning.sign.clone() {
+            let [before, after] = &event.bracket;
+            let asked = locate::Event { face: &piece.face, sign, before, after };
+            if let Some(found) = self.located(&asked, sample) {
+                let mut threshold = self.describer.threshold(self.equations, &asked, &found);
+                if meaning.kind == ThresholdKind::Pitchfork {
+                    threshold.kind = meaning.kind;
+                }
+                threshold.species = meaning.species.map(SpeciesId).or(threshold.species);
+                return threshold;
             }
-            threshold.species = meaning.species.map(SpeciesId).or(threshold.species);
-            return threshold;
         }
         Threshold {
             kind: meaning.kind,
-            at: self.control_of(sample),
+            at: sample.control(),
             state,
             eigenvalues: event.eigenvalues.clone(),
             other_side: beyond.map(|(next, start)| self.eigenvalues(next, start)),
@@ -95,19 +99,9 @@ impl Picture<'_> {
     }
 
     /// An event's root, if it is where the event was.
-    fn located(
-        &mut self,
-        piece: &Rc<Piece>,
-        sign: Sign,
-        sample: &Sample,
-        event: &Event,
-    ) -> Option<((Located, [Vec<f64>; 2]), Sign)> {
-        let [before, after] = &event.bracket;
-        let asked = locate::Event { face: &piece.face, sign: sign.clone(), before, after };
-        let found = self.locator.locate(self.equations, &asked)?;
-        let width = self.width();
-        let is_here = (found.at - self.control_of(sample)).abs() <= SAME[0].max(1e-5) * width;
-        is_here.then(|| ((found, event.bracket.clone()), sign))
+    fn located(&mut self, asked: &locate::Event<'_>, sample: &Sample) -> Option<Located> {
+        let found = self.locator.locate(self.equations, asked)?;
+        ((found.at - sample.control()).abs() <= HERE * self.width()).then_some(found)
     }
 
     fn eigenvalues(&self, piece: &Piece, sample: &Sample) -> Vec<Complex<f64>> {

@@ -25,7 +25,9 @@ impl Picture<'_> {
         for (number, &b) in order.iter().enumerate() {
             let followed = &self.branches[b];
             let mut points = followed.points.clone();
-            points.iter_mut().for_each(|point| point.threshold = point.threshold.map(|old| place[old]));
+            for point in &mut points {
+                point.threshold = point.threshold.map(|old| place[old]);
+            }
             add_arms(&mut thresholds, number, &followed.present, &points);
             let ends = followed.ends.map(|end| match end {
                 Ending::Threshold(old) => Ending::Threshold(place[old]),

@@ -6,8 +6,9 @@
 
 use nalgebra::Complex;
 
-use super::{Change, End, Event, Node, Sample, Walk, distance, dot};
+use super::{Change, End, Event, Node, Sample, Walk, distance};
 use crate::analysis::passage::locate::crossing;
+use crate::analysis::response::curve::normalise;
 use crate::analysis::response::events;
 
 /// Half the length around an event within which all that changes belongs to it.
@@ -22,8 +23,7 @@ impl Walk<'_, '_> {
     pub(super) fn between(&mut self, before: &Sample, after: &Sample, share: f64) -> Option<Sample> {
         let parts = after.at.iter().zip(&before.at).zip(&self.curve.scale);
         let mut border: Vec<f64> = parts.map(|((b, a), s)| (b - a) / s).collect();
-        let length = dot(&border, &border).sqrt();
-        border.iter_mut().for_each(|part| *part /= length);
+        normalise(&mut border);
         let at = after.at.iter().zip(&before.at).map(|(b, a)| a + share * (b - a)).collect();
         let mut sample = Sample { at, ..Sample::default() };
         let corrected = self.curve.correct(&mut sample.at, &border)?;
@@ -108,7 +108,7 @@ impl Walk<'_, '_> {
         }
         let (mut low, mut high) = (0.0, 1.0);
         for _ in 0..HALVINGS {
-            let middle = (low + high) / 2.0;
+            let middle = f64::midpoint(low, high);
             match self.between(before, after, middle) {
                 Some(sample) if !events::has_happened(change, before, &sample) => low = middle,
                 Some(_) => high = middle,
@@ -116,7 +116,7 @@ impl Walk<'_, '_> {
                 None => break,
             }
         }
-        ((low + high) / 2.0, None)
+        (f64::midpoint(low, high), None)
     }
 
     pub(super) fn is_over_a_kink(&self, next: &Sample) -> bool {
