@@ -113,14 +113,27 @@ pub(super) fn keys(app: &App, page: &mut Page<'_>, area: Area) {
 }
 
 fn hints(place: Place) -> Vec<(Action, &'static str)> {
-    let help = (Action::Help, "help");
-    let leave = (Action::Leave, "leave");
     match place {
-        Place::On(Screen::Chooser) => {
-            vec![help, (Action::Accept, "open"), (Action::Type, "type a path"), leave]
+        Place::On(screen) => {
+            let mut all = vec![(Action::Help, "help")];
+            all.extend(on(screen));
+            all.push((Action::Leave, "leave"));
+            all
         }
-        Place::On(Screen::Values) => vec![
-            help,
+        Place::Pointing => vec![(Action::Stop, "done"), (Action::Backwards, "where from"), (Action::NoPoint, "away")],
+        Place::Dragging => vec![(Action::Stop, "done"), (Action::Closer, "closer"), (Action::Wider, "wider")],
+        Place::Reading => vec![(Action::Step(Step::On), "on"), (Action::Stop, "back")],
+        Place::Typing => {
+            vec![(Action::Accept, "take it"), (Action::Stop, "leave it"), (Action::Complete, "complete, or change")]
+        }
+    }
+}
+
+/// The keys of a screen, without those that all have.
+fn on(screen: Screen) -> Vec<(Action, &'static str)> {
+    match screen {
+        Screen::Chooser => vec![(Action::Accept, "open"), (Action::Type, "type a path")],
+        Screen::Values => vec![
             (Action::Fine(Step::On), "raise"),
             (Action::Fine(Step::Back), "lower"),
             (Action::Type, "type"),
@@ -128,10 +141,8 @@ fn hints(place: Place) -> Vec<(Action, &'static str)> {
             (Action::Record, "new scenario"),
             (Action::Write, "write"),
             (Action::Show(Screen::Equilibria), "equilibria"),
-            leave,
         ],
-        Place::On(Screen::Interactions) => vec![
-            help,
+        Screen::Interactions => vec![
             (Action::Step(Step::On), "next"),
             (Action::Other, "direct or net"),
             (Action::Absent, "absent too"),
@@ -140,10 +151,8 @@ fn hints(place: Place) -> Vec<(Action, &'static str)> {
             (Action::Scenario(Step::On), "scenario"),
             (Action::Show(Screen::Equilibria), "equilibria"),
             (Action::Write, "write"),
-            leave,
         ],
-        Place::On(Screen::Knock) => vec![
-            help,
+        Screen::Knock => vec![
             (Action::Step(Step::On), "next"),
             (Action::Knock(Step::Back), "take more"),
             (Action::Knock(Step::On), "less"),
@@ -152,10 +161,8 @@ fn hints(place: Place) -> Vec<(Action, &'static str)> {
             (Action::Scenario(Step::On), "scenario"),
             (Action::Show(Screen::Equilibria), "equilibria"),
             (Action::Write, "write"),
-            leave,
         ],
-        Place::On(Screen::Response) => vec![
-            help,
+        Screen::Response => vec![
             (Action::Fine(Step::On), "move the rule"),
             (Action::Threshold(Step::On), "next threshold"),
             (Action::Step(Step::On), "next state"),
@@ -164,10 +171,8 @@ fn hints(place: Place) -> Vec<(Action, &'static str)> {
             (Action::TakeOver, "try it"),
             (Action::Show(Screen::Equilibria), "equilibria"),
             (Action::Write, "write"),
-            leave,
         ],
-        Place::On(_) => vec![
-            help,
+        _ => vec![
             (Action::Step(Step::On), "next"),
             (Action::Scenario(Step::On), "scenario"),
             (Action::Show(Screen::SideBySide), "side by side"),
@@ -177,13 +182,6 @@ fn hints(place: Place) -> Vec<(Action, &'static str)> {
             (Action::Show(Screen::Interactions), "interactions"),
             (Action::Point, "move a point"),
             (Action::Write, "write"),
-            leave,
         ],
-        Place::Pointing => vec![(Action::Stop, "done"), (Action::Backwards, "where from"), (Action::NoPoint, "away")],
-        Place::Dragging => vec![(Action::Stop, "done"), (Action::Closer, "closer"), (Action::Wider, "wider")],
-        Place::Reading => vec![(Action::Step(Step::On), "on"), (Action::Stop, "back")],
-        Place::Typing => {
-            vec![(Action::Accept, "take it"), (Action::Stop, "leave it"), (Action::Complete, "complete, or change")]
-        }
     }
 }
