@@ -108,10 +108,14 @@ pub enum Action {
     TakeUp,
     /// Completes the path that is typed; where something is written, changes what.
     Complete,
-    /// Another kind of the same screen: what the interactions show, what the knock hits.
+    /// Another kind of the same screen: what the interactions show, what the knock hits, which control is varied.
     Other,
     /// A knock that leaves more, or less.
     Knock(Step),
+    /// To the threshold before, or after.
+    Threshold(Step),
+    /// The value at the rule becomes a tried value.
+    TakeOver,
     /// Absent species among the interactions, or only those that are there.
     Absent,
     /// To another part of what is shown.

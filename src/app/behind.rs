@@ -6,12 +6,14 @@
 use super::saved::PAGE;
 use super::study::Slot;
 use super::wants::naming;
-use super::{Answer, App, Screen, Source, Study, beside, interactions, knock};
+use super::{Answer, App, Screen, Source, Study, beside, interactions, knock, response};
+use crate::analysis::response::Ending;
 use crate::diag::SourceId;
 use crate::model::ParameterId;
 use crate::report::compare::{self, Comparison};
-use crate::report::rows;
+use crate::report::response::{Along, Chosen, FIELDS, Responses};
 use crate::report::table::{Command, Form, Limits, Names, Scene, Table, written};
+use crate::report::{self, rows};
 
 /// Said where what is shown is not known yet.
 const WAIT: &str = "it is still being worked out; write it when that is done";
@@ -26,6 +28,7 @@ pub fn behind(app: &App, form: Form) -> Result<String, String> {
         (Screen::Chooser, _) | (_, None) => Err("no model is open".to_owned()),
         (Screen::SideBySide, Some(study)) => side_by_side(app, study, form),
         (Screen::Interactions | Screen::Knock, Some(study)) => of_selected(app, study, form),
+        (Screen::Response, Some(study)) => responses(app, study, form),
         // What these screens say of equilibria, the table says in more columns.
         (Screen::Equilibria | Screen::Values, Some(study)) => table(app, study, form),
     }
@@ -44,6 +47,7 @@ pub fn name(app: &App) -> String {
         Screen::Interactions => "interactions",
         Screen::Knock => "knock",
         Screen::Values => "values",
+        Screen::Response => "response",
     };
     format!("{stem}-{screen}")
 }
@@ -99,6 +103,7 @@ fn table(app: &App, study: &Study, form: Form) -> Result<String, String> {
         word: "table",
         path: Some(&path(study)),
         model: study.model(),
+        varied: &[],
         scenarios: if is_all { &[] } else { &scenarios },
         set: &set,
         budget: (app.budget != Limits::SECONDS).then_some(app.budget),
@@ -150,6 +155,7 @@ fn side_by_side(app: &App, study: &Study, form: Form) -> Result<String, String> 
         word: "compare",
         path: Some(&path(study)),
         model: &original.model,
+        varied: &[],
         scenarios: if scenarios.len() == original.model.scenarios.len() { &[] } else { &scenarios },
         set: &study.world.set,
         budget: (app.budget != Limits::SECONDS).then_some(app.budget),
@@ -171,6 +177,54 @@ fn side_by_side(app: &App, study: &Study, form: Form) -> Result<String, String> 
         columns: None,
     };
     Ok(compare::written(&Comparison::new(&table, &known.passages), form, PAGE))
+}
+
+/// The response of the scenario that is looked at, as the command for it alone has it.
+fn responses(app: &App, study: &Study, form: Form) -> Result<String, String> {
+    let slot = study.slot().ok_or(WAIT)?;
+    let scene = scene(study, slot)?;
+    let control = response::control(study).ok_or("nothing can be varied here")?;
+    let (along, is_whole) = response::along(app, study).ok_or(WAIT)?;
+    if !is_whole {
+        return Err(WAIT.to_owned());
+    }
+    let set = set(study, study.current);
+    let original = &study.world.original;
+    let scenarios = [scene.scenario];
+    let command = Command {
+        word: "response",
+        path: Some(&path(study)),
+        model: &original.model,
+        varied: &[(control.parameter, None)],
+        scenarios: if original.model.scenarios.len() == 1 { &[] } else { &scenarios },
+        set: &set,
+        budget: (app.budget != Limits::SECONDS).then_some(app.budget),
+        columns: None,
+        form,
+    }
+    .to_string();
+    let count = scene.outcome.as_ref().map_or(0, |solved| solved.equilibria.list.len());
+    let table = Table {
+        model: &original.model,
+        sha256: &original.sha256,
+        tables: &original.tables,
+        command: &command,
+        set: &set,
+        bounds: &study.world.prepared.bounds,
+        limits: Limits { seconds: app.budget, boxes: Limits::BOXES },
+        scenes: std::slice::from_ref(&scene),
+        names: &Names::alone(count),
+        interrupted: along.response.branches.iter().any(|branch| branch.ends.contains(&Ending::Stopped)),
+        columns: None,
+    };
+    let responses = Responses {
+        table: &table,
+        control: control.parameter,
+        range: [control.from, control.to],
+        chosen: &Chosen::all(&FIELDS),
+        along: &[Some(Along::clone(along))],
+    };
+    Ok(report::response::written(&responses, form, PAGE))
 }
 
 /// What was found in a slot, as of the scenario of the file that it shows.

@@ -23,6 +23,8 @@ pub struct Job {
     pub task: Task,
     /// How far a search has come.
     pub progress: Progress,
+    /// What it has found so far, where it says so.
+    pub partly: Option<Answer>,
 }
 
 /// What is known and under way.
@@ -61,7 +63,7 @@ impl Desk {
             }
             self.last += 1;
             let id = JobId(self.last);
-            self.jobs.push(Job { id, task: task.clone(), progress: Progress::default() });
+            self.jobs.push(Job { id, task: task.clone(), progress: Progress::default(), partly: None });
             effects.push(Effect::Ask(id, task));
         }
         self.forget(wanted);
@@ -81,6 +83,18 @@ impl Desk {
         if let Some(job) = self.jobs.iter_mut().find(|job| job.id == id) {
             job.progress = progress;
         }
+    }
+
+    /// A job has found something, and goes on.
+    pub fn take_part(&mut self, id: JobId, answer: Answer) {
+        if let Some(job) = self.jobs.iter_mut().find(|job| job.id == id) {
+            job.partly = Some(answer);
+        }
+    }
+
+    /// What a task under way has found so far.
+    pub fn partly(&self, task: &Task) -> Option<&Answer> {
+        self.jobs.iter().find(|job| job.task == *task)?.partly.as_ref()
     }
 
     /// The answer to a task.
@@ -104,6 +118,23 @@ impl Desk {
     /// What is under way.
     pub fn jobs(&self) -> &[Job] {
         &self.jobs
+    }
+
+    /// The latest sketch in the same cells that is known, of whatever states: for a sketch whose states move.
+    pub fn before_moving(&self, wanted: &Painting) -> Option<&Painting> {
+        self.known.iter().rev().find_map(|(task, answer)| match (task, answer) {
+            (Task::Paint(painting), Answer::Painted(Some(_)))
+                if painting.plot == wanted.plot && painting.window == wanted.window =>
+            {
+                Some(painting)
+            }
+            _ => None,
+        })
+    }
+
+    /// The following of branches that is under way.
+    pub fn following(&self) -> Option<&Job> {
+        self.jobs.iter().find(|job| matches!(job.task, Task::Respond { .. }))
     }
 
     /// The search that is under way.

@@ -42,12 +42,13 @@ const BESIDE: Place = Place::On(Screen::SideBySide);
 const INTERACTIONS: Place = Place::On(Screen::Interactions);
 const KNOCK: Place = Place::On(Screen::Knock);
 const VALUES: Place = Place::On(Screen::Values);
+const RESPONSE: Place = Place::On(Screen::Response);
 
 /// Wherever a model is shown.
-const STUDY: &[Place] = &[EQUILIBRIA, BESIDE, INTERACTIONS, KNOCK, VALUES];
+const STUDY: &[Place] = &[EQUILIBRIA, BESIDE, INTERACTIONS, KNOCK, VALUES, RESPONSE];
 const SKETCH: &[Place] = &[EQUILIBRIA, BESIDE, VALUES];
 const SKETCH_AND_HOLDS: &[Place] = &[EQUILIBRIA, BESIDE, VALUES, Place::Pointing, Place::Dragging];
-const LISTS: &[Place] = &[CHOOSER, EQUILIBRIA, BESIDE, INTERACTIONS, KNOCK, VALUES, Place::Reading];
+const LISTS: &[Place] = &[CHOOSER, EQUILIBRIA, BESIDE, INTERACTIONS, KNOCK, VALUES, RESPONSE, Place::Reading];
 const ANYWHERE: &[Place] = &[
     CHOOSER,
     EQUILIBRIA,
@@ -55,13 +56,14 @@ const ANYWHERE: &[Place] = &[
     INTERACTIONS,
     KNOCK,
     VALUES,
+    RESPONSE,
     Place::Pointing,
     Place::Dragging,
     Place::Reading,
     Place::Typing,
 ];
 const BUT_TYPING: &[Place] =
-    &[CHOOSER, EQUILIBRIA, BESIDE, INTERACTIONS, KNOCK, VALUES, Place::Pointing, Place::Dragging];
+    &[CHOOSER, EQUILIBRIA, BESIDE, INTERACTIONS, KNOCK, VALUES, RESPONSE, Place::Pointing, Place::Dragging];
 const HOLDS: &[Place] = &[Place::Pointing, Place::Dragging];
 
 const fn bind(keys: &'static [Key], action: Action, help: &'static str, places: &'static [Place]) -> Binding {
@@ -97,6 +99,7 @@ pub const BINDINGS: &[Binding] = &[
     bind(&[Key::Char('i')], Action::Show(Screen::Interactions), "show who acts on whom", STUDY),
     bind(&[Key::Char('a')], Action::Show(Screen::Knock), "show what happens after a knock", STUDY),
     bind(&[Key::Char('v')], Action::Show(Screen::Values), "try other values", STUDY),
+    bind(&[Key::Char('T')], Action::Show(Screen::Response), "show thresholds as a control varies", STUDY),
     bind(&[Key::Char('o')], Action::Show(Screen::Chooser), "open another model", STUDY),
     bind(&[Key::Char('+'), Key::Char('=')], Action::Closer, "look closer", SKETCH_AND_HOLDS),
     bind(&[Key::Char('-')], Action::Wider, "look wider", SKETCH_AND_HOLDS),
@@ -158,6 +161,20 @@ pub const BINDINGS: &[Binding] = &[
     bind(&[Key::Char(',')], Action::Knock(Step::Back), "take more, or add less", &[KNOCK]),
     bind(&[Key::Char(']')], Action::Scroll(Direction::Down), "see more species", &[KNOCK]),
     bind(&[Key::Char('[')], Action::Scroll(Direction::Up), "see the species before", &[KNOCK]),
+    bind(&[Key::Right, Key::Char('f')], Action::Fine(Step::On), "move the rule a little to the right", &[RESPONSE]),
+    bind(&[Key::Left, Key::Char('b')], Action::Fine(Step::Back), "move the rule a little to the left", &[RESPONSE]),
+    bind(&[Key::Char('.')], Action::Coarse(Step::On), "move the rule much to the right", &[RESPONSE]),
+    bind(&[Key::Char(',')], Action::Coarse(Step::Back), "move the rule much to the left", &[RESPONSE]),
+    bind(&[Key::Char(']')], Action::Threshold(Step::On), "jump to the threshold after", &[RESPONSE]),
+    bind(&[Key::Char('[')], Action::Threshold(Step::Back), "jump to the threshold before", &[RESPONSE]),
+    bind(&[Key::Char('0')], Action::Fit, "put the rule back to the present value", &[RESPONSE]),
+    bind(&[Key::Tab], Action::Other, "vary another control", &[RESPONSE]),
+    bind(&[Key::Char('y')], Action::Species(Axis::Upwards), "draw another quantity upwards", &[RESPONSE]),
+    bind(&[Key::Char(')')], Action::Numbers(Step::On), "see more of the numbers", &[RESPONSE]),
+    bind(&[Key::Char('(')], Action::Numbers(Step::Back), "see the numbers before", &[RESPONSE]),
+    bind(&[Key::Char('t')], Action::TakeOver, "try the value at the rule", &[RESPONSE]),
+    bind(&[Key::Char('}')], Action::Scenario(Step::On), "go to the scenario after", &[RESPONSE]),
+    bind(&[Key::Char('{')], Action::Scenario(Step::Back), "go to the scenario before", &[RESPONSE]),
     bind(&[Key::Char('w')], Action::Write, "write what the screen shows to a file", STUDY),
     bind(&[Key::Char('R')], Action::Reload, "read the model file again", STUDY),
     bind(&[Key::Char('h'), Key::Char('?')], Action::Help, "show these keys, or hide them", BUT_TYPING),
@@ -171,7 +188,18 @@ pub const BINDINGS: &[Binding] = &[
         &[Key::Char('q')],
         Action::Leave,
         "leave",
-        &[CHOOSER, EQUILIBRIA, BESIDE, INTERACTIONS, KNOCK, VALUES, Place::Pointing, Place::Dragging, Place::Reading],
+        &[
+            CHOOSER,
+            EQUILIBRIA,
+            BESIDE,
+            INTERACTIONS,
+            KNOCK,
+            VALUES,
+            RESPONSE,
+            Place::Pointing,
+            Place::Dragging,
+            Place::Reading,
+        ],
     ),
     bind(&[Key::Interrupt], Action::Leave, "leave", ANYWHERE),
 ];

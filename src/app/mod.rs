@@ -17,6 +17,7 @@ pub mod key;
 pub mod keymap;
 pub mod knock;
 pub mod memory;
+pub mod response;
 pub mod saved;
 pub mod sketch;
 pub mod study;
@@ -56,6 +57,8 @@ pub enum Screen {
     Knock,
     /// What if a value were another?
     Values,
+    /// What becomes of the steady states as a control varies, and where is the edge?
+    Response,
 }
 
 /// How many colours a terminal can show. Colour only repeats what signs and words say.
@@ -229,6 +232,8 @@ pub enum Msg {
     Resized(Size),
     /// A job is done.
     Answered(JobId, Answer),
+    /// A job has found something, and goes on.
+    Partly(JobId, Answer),
     /// A search has come further: faces and boxes in all.
     Advanced(JobId, crate::analysis::equilibria::Progress),
     /// A file was written, or was not.

@@ -7,6 +7,7 @@ use super::beside::Beside;
 use super::interactions::Interacting;
 use super::knock::Knock;
 use super::memory::Session;
+use super::response::Responding;
 use super::sketch::Sketch;
 use crate::analysis::assess::Assessed;
 use crate::analysis::equilibria::Equilibrium;
@@ -124,6 +125,8 @@ pub struct Study {
     pub interacting: Interacting,
     /// The knock.
     pub knock: Knock,
+    /// How the response to a control is looked at.
+    pub responding: Responding,
     /// Values that were tried.
     pub tried: Tried,
     /// What was tried when the program ran last and is in no file, until something is tried now.
@@ -152,6 +155,7 @@ impl Study {
             sketch: Sketch::default(),
             interacting: Interacting::default(),
             knock: Knock::default(),
+            responding: Responding::default(),
             tried: Tried::default(),
             offer: None,
             parameter: 0,

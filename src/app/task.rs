@@ -7,7 +7,10 @@ use super::{Read, Source};
 use crate::analysis::field::{Scale, Slice, Window};
 use crate::analysis::passage::Passage;
 use crate::analysis::paths::Path;
+use crate::analysis::response::Control;
+use crate::model::ParameterId;
 use crate::report::course::Course;
+use crate::report::response::Along;
 use crate::report::sketch::{Picture, Plot};
 use crate::report::table::{Names, Scene, Solved};
 
@@ -61,6 +64,30 @@ pub enum Task {
         start: Vec<f64>,
         /// For how long, in time units; backwards where negative.
         until: f64,
+    },
+    /// Follows every equilibrium of a scenario over the range of a control.
+    Respond {
+        /// The model.
+        world: Arc<World>,
+        /// What was found at the present value.
+        scene: Found,
+        /// The control.
+        control: Control,
+        /// Seconds that it may take.
+        budget: f64,
+    },
+    /// Searches a scenario with one parameter at another value.
+    Cut {
+        /// The model.
+        world: Arc<World>,
+        /// Which scenario.
+        scenario: usize,
+        /// The parameter.
+        parameter: ParameterId,
+        /// Its value.
+        at: f64,
+        /// Seconds that it may take.
+        budget: f64,
     },
     /// Follows the path after a knock, and compares it with what the linear part predicts.
     Run(Release),
@@ -151,4 +178,8 @@ pub enum Answer {
     Followed(Option<Arc<Path>>),
     /// Of following after a knock; nothing where the scenario has no equations.
     Ran(Option<Arc<Course>>),
+    /// Of following over the range of a control; nothing where the scenario has no equations.
+    Responded(Option<Arc<Along>>),
+    /// Of searching at another value, with the world that has it; nothing where the scenario has no equations.
+    Cut(Option<(Arc<World>, Arc<Scene>)>),
 }

@@ -9,7 +9,7 @@ use super::geometry::Area;
 use super::study::Slot;
 use super::task::{Found, Painting, Task};
 use super::{App, Screen, Study};
-use super::{beside, geometry};
+use super::{beside, geometry, response};
 use crate::analysis::field::{Held, Slice, Window};
 use crate::report::sketch::{Plot, Size, fit};
 use crate::report::table::Solved;
@@ -33,6 +33,7 @@ pub fn wants(app: &App) -> Vec<Task> {
             tasks.extend(paths(study));
         }
         Screen::SideBySide => tasks.extend(side_by_side(app, study)),
+        Screen::Response => tasks.extend(response(app, study)),
         Screen::Chooser | Screen::Interactions | Screen::Knock => {}
     }
     if app.screen == Screen::Knock {
@@ -48,7 +49,15 @@ fn side_by_side(app: &App, study: &Study) -> Vec<Task> {
     let sketches = slots.iter().zip(&parts.columns).filter_map(|(&slot, [_, area])| {
         painting(study, slot, Size { columns: area.columns.into(), rows: area.rows.into() }).map(Task::Paint)
     });
-    sketches.chain(paths(study)).chain(beside::task(app, study)).collect()
+    let responses = slots.iter().filter_map(|&slot| response::respond_in(app, study, slot));
+    sketches.chain(paths(study)).chain(beside::task(app, study)).chain(responses).collect()
+}
+
+/// The branches, what is at the rule, and its sketch where there is room.
+fn response(app: &App, study: &Study) -> Vec<Task> {
+    let all = [response::at_rule(app, study), response::respond(app, study)];
+    let sketch = response::parts(app.size, 0).sketch.and_then(|area| response::painting(app, study, area));
+    all.into_iter().flatten().chain(sketch.map(Task::Paint)).collect()
 }
 
 /// The tried values, where they are others than those that are ready.

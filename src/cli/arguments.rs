@@ -68,6 +68,12 @@ pub(super) enum Command {
         #[command(flatten)]
         work: Work,
     },
+    /// Follow every equilibrium as a parameter varies: branches, thresholds, yields, and how far it is to the edge
+    #[command(after_help = AFTER_RESPONSE)]
+    #[command(
+        override_usage = "restpoint response [OPTIONS] --of <NAME> <MODEL>\n       restpoint response --columns help"
+    )]
+    Response(Response),
     /// Draw the direction field of each scenario, with its equilibria, in characters
     #[command(
         after_help = "The drawing shows what lies around the equilibria and today's stocks, for all scenarios alike."
@@ -89,6 +95,33 @@ pub(super) struct Sketch {
     #[command(flatten)]
     pub(super) work: Work,
 }
+
+/// What is to be varied, and over what.
+#[derive(Debug, Args)]
+pub(super) struct Response {
+    /// Model file in YAML, or - for standard input
+    pub(super) model: Option<PathBuf>,
+    /// The parameter that is varied; given twice, the chart of the two
+    #[arg(long, value_name = "NAME")]
+    pub(super) of: Vec<String>,
+    /// Lower end of its range; with two parameters one for each, in their order [default: as the model says]
+    #[arg(long, value_name = "A", value_parser = finite, allow_negative_numbers = true)]
+    pub(super) from: Vec<f64>,
+    /// Upper end of its range [default: as the model says]
+    #[arg(long, value_name = "B", value_parser = finite, allow_negative_numbers = true)]
+    pub(super) to: Vec<f64>,
+    #[command(flatten)]
+    pub(super) work: Work,
+    #[command(flatten)]
+    pub(super) show: Show,
+}
+
+const AFTER_RESPONSE: &str = "\
+text, markdown and latex say what each threshold means; csv has a row for each point, threshold, best yield and band, and \
+--columns chooses among its fields; json has the most.
+
+Branches, thresholds, yields and margins are numerical, and --strict does not ask that they be proved, only that no \
+equilibrium be missing anywhere in the range.";
 
 const AFTER_TABLE: &str = "\
 Equilibria are called E1, E2, ... and keep their names in all scenarios of one run.
@@ -158,6 +191,13 @@ fn setting(text: &str) -> Result<(String, f64), String> {
     match value.trim().parse() {
         Ok(number) if f64::is_finite(number) => Ok((name.trim().to_owned(), number)),
         _ => Err(format!("\"{}\" is not a finite number", value.trim())),
+    }
+}
+
+fn finite(text: &str) -> Result<f64, String> {
+    match text.trim().parse() {
+        Ok(number) if f64::is_finite(number) => Ok(number),
+        _ => Err("a finite number is needed".to_owned()),
     }
 }
 

@@ -13,6 +13,8 @@ pub(super) struct Choice {
     pub(super) scenarios: Vec<usize>,
     /// New values, one a parameter at most.
     pub(super) set: Vec<(ParameterId, f64)>,
+    /// Parameters that are varied, each with its range where that was typed.
+    pub(super) varied: Vec<(ParameterId, Option<[f64; 2]>)>,
 }
 
 impl Choice {
@@ -33,7 +35,7 @@ impl Choice {
             set.retain(|(other, _)| *other != id);
             set.push((id, *value));
         }
-        Ok(Self { scenarios, set })
+        Ok(Self { scenarios, set, varied: Vec::new() })
     }
 }
 
@@ -64,7 +66,11 @@ fn species(model: &Model, symbol: &str) -> Result<usize, String> {
     }
 }
 
-fn parameter(model: &Model, name: &str) -> Result<ParameterId, String> {
+/// The parameter of this name.
+///
+/// # Errors
+/// That there is none, with the nearest that there is.
+pub(super) fn parameter(model: &Model, name: &str) -> Result<ParameterId, String> {
     let composed: String = name.nfc().collect();
     match model.names.get(&composed) {
         Some(Name::Parameter(id)) => Ok(*id),
@@ -84,7 +90,8 @@ fn unknown<'m, I: Iterator<Item = &'m str>>(kind: &str, name: &str, known: impl 
 /// Names that a message lists; more would bury it.
 const MOST_LISTED: usize = 12;
 
-fn listed(names: &[&str]) -> String {
+/// Names in quotation marks, the first of them where there are many.
+pub(super) fn listed(names: &[&str]) -> String {
     let quoted: Vec<String> = names.iter().take(MOST_LISTED).map(|name| format!("\"{name}\"")).collect();
     match names.len().saturating_sub(MOST_LISTED) {
         0 => quoted.join(", "),

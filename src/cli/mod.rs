@@ -22,9 +22,11 @@ mod choice;
 mod compare;
 mod interface;
 mod model;
+mod response;
 mod sketch;
 mod solve;
 mod table;
+mod varied;
 
 /// How a run ended; the numbers are part of the contract.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -159,6 +161,7 @@ fn perform(arguments: &Arguments, screen: Screen) -> Outcome {
         Some(Command::Table { model: None, .. }) => Outcome::only(NO_MODEL.to_owned(), Exit::Usage),
         Some(Command::Table { model, work, show }) => table::table(model.as_deref(), work, show, options, screen),
         Some(Command::Compare { model, work }) => compare::compare(model, work, options, screen),
+        Some(Command::Response(asked)) => response::response(asked, options, screen),
         Some(Command::Sketch(asked)) => sketch::sketch(asked, options, screen),
         None if arguments.show.is_help() => table::columns(options),
         None => interface::interface(arguments).unwrap_or_else(|| {

@@ -25,16 +25,21 @@ pub(super) struct Solver<'s> {
 
 impl Solver<'_> {
     pub(super) fn scene(&self, scenario: usize) -> Scene {
+        self.within(|budget| scene(self.model, self.prepared, scenario, budget))
+    }
+
+    /// Does something within the time of one scenario, with a line of progress.
+    pub(super) fn within<T>(&self, work: impl FnOnce(&Budget<'_>) -> T) -> T {
         let deadline = Deadline::after(self.limits.seconds);
         let meter = Meter::start();
-        let budget = Budget {
+        work(&Budget {
             boxes: self.limits.boxes,
             stop: &|| self.interrupt.is_raised() || deadline.is_past(),
             workers: &self.threads,
             observer: Some(&|done| meter.add(done)),
-        };
-        scene(self.model, self.prepared, scenario, &budget)
+        })
     }
+
     /// Names for all that was found, within the time of one scenario.
     pub(super) fn names(&self, scenes: &[Scene]) -> Names {
         if let [Scene { outcome: Ok(alone), .. }] = scenes {

@@ -100,6 +100,7 @@ pub(super) fn command(
         word: what.map_or("table", |(word, _)| word),
         path: path.as_deref(),
         model,
+        varied: &choice.varied,
         scenarios: if work.scenarios.is_empty() { &[] } else { &choice.scenarios },
         set: &choice.set,
         budget: work.budget,

@@ -4,7 +4,9 @@ use crate::analysis::assess::assess;
 use crate::analysis::equilibria::{Budget, all};
 use crate::analysis::passage::{Found, Passage, Ways, identify};
 use crate::analysis::prepare::Prepared;
-use crate::model::Model;
+use crate::analysis::response::{Chart, Control, Response, advise, band, chart, margins, respond};
+use crate::model::{Model, ParameterId};
+use crate::report::response::{Along, focus};
 use crate::report::table::{Limits, Names, Scene, Solved};
 
 /// Boxes on one face.
@@ -22,6 +24,46 @@ pub fn scene(model: &Model, prepared: &Prepared, scenario: usize, budget: &Budge
         Err(problems) => Err(problems.to_vec()),
     };
     Scene { scenario, outcome }
+}
+
+/// Follows what was found in a scenario as a parameter varies over a range, and says what that means for catches and
+/// margins; `None` for a scenario that failed. `told` gets the picture so far.
+pub fn along(
+    model: &Model,
+    prepared: &Prepared,
+    scene: &Scene,
+    (parameter, [from, to]): (ParameterId, [f64; 2]),
+    budget: &Budget<'_>,
+    told: &mut dyn FnMut(&Response),
+) -> Option<Along> {
+    let solved = scene.outcome.as_ref().ok()?;
+    let mut subject = prepared.subject(model, scene.scenario).ok()?;
+    let control = Control { parameter, from, to, present: *solved.values.get(parameter.0)? };
+    let list = &solved.equilibria.list;
+    let response = respond(&mut subject, &control, list, budget, told);
+    let advice = advise(&mut subject, &response, budget.stop);
+    let focus = focus(model, solved);
+    let band = focus.and_then(|place| band(&response, list, place));
+    let margins = focus.map(|place| margins(&mut subject, list, place, budget)).unwrap_or_default();
+    Some(Along { response, advice, focus, band, margins })
+}
+
+/// The chart of two parameters over their ranges, across and upwards; `None` for a scenario that failed.
+pub fn charted(
+    model: &Model,
+    prepared: &Prepared,
+    scene: &Scene,
+    varied: [(ParameterId, [f64; 2]); 2],
+    budget: &Budget<'_>,
+) -> Option<Chart> {
+    let solved = scene.outcome.as_ref().ok()?;
+    let subject = prepared.subject(model, scene.scenario).ok()?;
+    let [Some(across), Some(upwards)] = varied.map(|(parameter, [from, to])| {
+        Some(Control { parameter, from, to, present: *solved.values.get(parameter.0)? })
+    }) else {
+        return None;
+    };
+    Some(chart(&subject, [across, upwards], &solved.equilibria.list, budget))
 }
 
 /// Names the equilibria of scenarios in the order given, by following them from one to the next until `stop` says so.

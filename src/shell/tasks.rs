@@ -8,18 +8,20 @@ use crate::analysis::equilibria::{Budget, Progress};
 use crate::analysis::passage::Ways;
 use crate::analysis::paths::{Ended, follow};
 use crate::analysis::prepare::Prepared;
+use crate::analysis::response::{Advice, Control, Margins, Response};
 use crate::app::study::{TriedSet, World};
 use crate::app::task::{Compared, Found, Painting, Release};
 use crate::app::{Answer, Read, Source, Task};
 use crate::model::{Model, Name, Original, ParameterId};
 use crate::report::course::{Course, arrival, until_after};
+use crate::report::response::Along;
 use crate::report::sketch::{Picture, View};
 use crate::report::table::{Names, Scene};
 
 use super::clock::Deadline;
 use super::files::from_home;
 use super::models::{COMPILED, Reading, compiled, read};
-use super::solver::{BOXES, names, names_over, passages, scene};
+use super::solver::{BOXES, along, names, names_over, passages, scene};
 use super::workers::Threads;
 
 /// What a task is done with.
@@ -30,6 +32,8 @@ pub struct Means<'m> {
     pub stop: &'m (dyn Fn() -> bool + Sync),
     /// Told of how far a search has come.
     pub observer: &'m (dyn Fn(Progress) + Sync),
+    /// Told of what a task has found so far, where there is more to come.
+    pub told: &'m dyn Fn(Answer),
 }
 
 /// Does a task.
@@ -64,6 +68,12 @@ pub fn perform(task: Task, means: &Means<'_>) -> Answer {
         Task::Follow { world, scenario, start, until } => {
             let subject = world.prepared.subject(&world.original.model, scenario).ok();
             Answer::Followed(subject.map(|mut subject| Arc::new(follow(&mut subject, &start, until, &means.stop))))
+        }
+        Task::Respond { world, scene, control, budget } => {
+            Answer::Responded(responded(&world, &scene, &control, budget, means).map(Arc::new))
+        }
+        Task::Cut { world, scenario, parameter, at, budget } => {
+            Answer::Cut(cut(&world, scenario, (parameter, at), budget, means))
         }
         Task::Run(release) => Answer::Ran(run(&release, means).map(Arc::new)),
     }
@@ -140,6 +150,49 @@ fn prepare(world: &World, tried: &TriedSet, edition: u64) -> Result<Arc<World>, 
         }
         Err(found) => Err(found.first().map_or_else(String::new, |problem| problem.message.clone())),
     }
+}
+
+/// Follows every equilibrium over the range of a control, and tells of what it has on the way.
+fn responded(world: &World, scene: &Found, control: &Control, budget: f64, means: &Means<'_>) -> Option<Along> {
+    let deadline = Deadline::after(budget);
+    let budget = Budget {
+        boxes: BOXES,
+        stop: &|| (means.stop)() || deadline.is_past(),
+        workers: &means.threads,
+        observer: None,
+    };
+    let part = |response: &Response| Along {
+        response: response.clone(),
+        advice: Advice::default(),
+        focus: None,
+        band: None,
+        margins: Margins::default(),
+    };
+    let mut told = |response: &Response| (means.told)(Answer::Responded(Some(Arc::new(part(response)))));
+    let varied = (control.parameter, [control.from, control.to]);
+    along(&world.original.model, &world.prepared, &scene.0, varied, &budget, &mut told)
+}
+
+/// Searches a scenario with one parameter at another value; the world that has it is for drawing only.
+fn cut(
+    world: &World,
+    scenario: usize,
+    (parameter, at): (ParameterId, f64),
+    budget: f64,
+    means: &Means<'_>,
+) -> Option<(Arc<World>, Arc<Scene>)> {
+    let mut world = world.clone();
+    let plan = *world.prepared.plans.get(scenario)?.as_ref().ok()?;
+    *world.prepared.system.plans.get_mut(plan)?.values.get_mut(parameter.0)? = at;
+    let deadline = Deadline::after(budget);
+    let budget = Budget {
+        boxes: BOXES,
+        stop: &|| (means.stop)() || deadline.is_past(),
+        workers: &means.threads,
+        observer: None,
+    };
+    let scene = scene(&world.original.model, &world.prepared, scenario, &budget);
+    Some((Arc::new(world), Arc::new(scene)))
 }
 
 /// How many times as long a path is followed to see where it goes to.

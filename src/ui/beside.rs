@@ -6,6 +6,7 @@ use super::sure::Sure;
 use crate::analysis::equilibria::Equilibrium;
 use crate::app::beside::{Parts, compared, ids, parts, shown, task};
 use crate::app::geometry::Area;
+use crate::app::response::{self, Row};
 use crate::app::task::Compared;
 use crate::app::{App, Study};
 use crate::report::compare::{Change, Comparison, Entry, Identity, Measured, difference};
@@ -31,7 +32,7 @@ pub(super) fn draw(app: &App, study: &Study, page: &mut Page<'_>) {
         return;
     }
     match task(app, study).and_then(|task| compared(&app.desk, &task)) {
-        Some(known) => with(known, |comparison| lists(study, &slots, comparison, page, &parts)),
+        Some(known) => with(known, |comparison| lists(app, study, &slots, comparison, page, &parts)),
         None => {
             page.text(parts.sentence, [0, 0], "Scenarios are being searched and followed.", Ink::Faint);
         }
@@ -55,7 +56,7 @@ pub(super) fn with<T>(known: &Compared, show: impl FnOnce(&Comparison<'_>) -> T)
     show(&Comparison::new(&table, &known.passages))
 }
 
-fn lists(study: &Study, slots: &[usize], comparison: &Comparison<'_>, page: &mut Page<'_>, parts: &Parts) {
+fn lists(app: &App, study: &Study, slots: &[usize], comparison: &Comparison<'_>, page: &mut Page<'_>, parts: &Parts) {
     let row = study.beside.row.min(comparison.rows.len().saturating_sub(1));
     let Some(chosen) = comparison.rows.get(row) else { return };
     sentence(study, slots, comparison, chosen, page, parts.sentence);
@@ -74,8 +75,15 @@ fn lists(study: &Study, slots: &[usize], comparison: &Comparison<'_>, page: &mut
     } else {
         page.rule(parts.list, parts.list.rows - 1);
     }
-    numbers(comparison, chosen, page, parts);
+    let mut responses = response::compared(app, study, slots, &chosen.id);
+    if parts.numbers.rows < FULL {
+        responses.truncate(1);
+    }
+    numbers(comparison, chosen, &responses, page, parts);
 }
+
+/// Rows for numbers from which on more is said of the response than how near the state is to being lost.
+const FULL: u16 = 9;
 
 /// What has become of the selected equilibrium in the scenario that is looked at, else in any.
 fn sentence(
@@ -136,7 +144,7 @@ fn abundances(found: &Equilibrium, page: &Page<'_>) -> String {
 }
 
 /// The selected equilibrium's quantities, with how each differs from the first scenario.
-fn numbers(comparison: &Comparison<'_>, chosen: &Identity, page: &mut Page<'_>, parts: &Parts) {
+fn numbers(comparison: &Comparison<'_>, chosen: &Identity, responses: &[Row], page: &mut Page<'_>, parts: &Parts) {
     let labels = Area { columns: parts.labels() - 1, ..parts.numbers };
     page.text(labels, [0, 0], &format!("{} type", chosen.id), Ink::Faint);
     for (scene, entry) in chosen.entries.iter().enumerate() {
@@ -144,6 +152,14 @@ fn numbers(comparison: &Comparison<'_>, chosen: &Identity, page: &mut Page<'_>, 
         put(page, parts, scene, 0, &text, ink);
     }
     let mut row = 1 + leads(comparison, page, parts);
+    for Row { label, cells } in responses {
+        page.text(labels, [0, row], label, Ink::Faint);
+        let base = comparison.reference.and_then(|reference| cells.get(reference));
+        for (scene, text) in cells.iter().enumerate() {
+            put(page, parts, scene, row, text, if Some(text) == base { Ink::Plain } else { Ink::Changed });
+        }
+        row += 1;
+    }
     // Abundances stand in the list already.
     let is_state = |k: &usize| matches!(comparison.quantities[*k].measured, Measured::State(_));
     let (states, others): (Vec<usize>, Vec<usize>) = (0..comparison.quantities.len()).partition(is_state);

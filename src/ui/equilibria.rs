@@ -148,9 +148,14 @@ fn ending_at(page: &mut Page<'_>, area: Area, [end, row]: [u16; 2], text: &str, 
 
 /// The numbers of the selected equilibrium: each on a line, or on two where it is too long.
 fn numbers(study: &Study, case: &Case<'_>, page: &mut Page<'_>, area: Area) {
+    facts(case, study.chosen, study.facts_from, page, area);
+}
+
+/// The numbers of an equilibrium, by its place, from the `from`-th on.
+pub(super) fn facts(case: &Case<'_>, place: usize, from: usize, page: &mut Page<'_>, area: Area) {
     let ascii = page.style == Style::Ascii;
-    let facts = case.facts(study.chosen, ascii);
-    let from = study.facts_from.min(facts.len().saturating_sub(1));
+    let facts = case.facts(place, ascii);
+    let from = from.min(facts.len().saturating_sub(1));
     let mut row = 0;
     for (place, fact) in facts.iter().enumerate().skip(from) {
         let is_long = fact.label.width() + 2 + fact.value.width() > usize::from(area.columns);

@@ -11,6 +11,7 @@ mod interactions;
 mod knock;
 mod page;
 mod paint;
+mod response;
 mod single;
 mod sketch;
 mod sure;
@@ -47,6 +48,7 @@ fn body(app: &App, page: &mut Page<'_>, area: Area) {
         (_, Screen::Values, Some(study)) => values::draw(app, study, page),
         (_, Screen::SideBySide, Some(study)) => beside::draw(app, study, page),
         (_, Screen::Interactions, Some(study)) => interactions::draw(app, study, page),
+        (_, Screen::Response, Some(study)) => response::draw(app, study, page),
         (_, Screen::Knock, Some(study)) => knock::draw(app, study, page),
         (_, _, Some(study)) => equilibria::draw(app, study, page),
     }

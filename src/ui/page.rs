@@ -1,10 +1,11 @@
 //! What all screens share: the heading, the line on what happens, the keys that matter.
 
 use super::paint::Page;
-use crate::app::action::{Action, Direction, Step};
+use crate::app::action::{Action, Axis, Direction, Step};
+use crate::app::desk::Job;
 use crate::app::geometry::{Area, SMALLEST};
 use crate::app::keymap::{Place, key_of, place};
-use crate::app::{App, Screen, Study};
+use crate::app::{Answer, App, Screen, Study};
 use crate::report::grid::Ink;
 use crate::report::progress::done;
 use unicode_width::UnicodeWidthStr;
@@ -53,6 +54,8 @@ pub(super) fn status(app: &App, page: &mut Page<'_>, area: Area) {
     } else if let Some(job) = app.desk.search() {
         let text = format!("searching: {}; Esc stops it", done(job.progress));
         page.text(area, [0, 0], &text, Ink::Plain);
+    } else if let Some(job) = app.desk.following().filter(|_| app.screen == Screen::Response) {
+        page.text(area, [0, 0], &following(job), Ink::Plain);
     } else if app.reading.is_some() {
         page.text(area, [0, 0], "reading", Ink::Plain);
     } else if let Some(text) = offered(app) {
@@ -66,6 +69,21 @@ pub(super) fn status(app: &App, page: &mut Page<'_>, area: Area) {
         let text = [long, short].into_iter().find(|text| text.len() <= area.columns.into());
         page.text(area, [0, 0], text.unwrap_or("A local result about a model; the authority sets limits."), Ink::Faint);
     }
+}
+
+/// How far branches are followed.
+fn following(job: &Job) -> String {
+    let known = match &job.partly {
+        Some(Answer::Responded(Some(along))) => {
+            let response = &along.response;
+            let count =
+                |count: usize, one: &str, many: &str| format!("{count} {}", if count == 1 { one } else { many });
+            let branches = count(response.branches.len(), "branch", "branches");
+            format!("{branches} and {} so far", count(response.thresholds.len(), "threshold", "thresholds"))
+        }
+        _ => "nothing yet".to_owned(),
+    };
+    format!("following branches: {known}; Esc stops it")
 }
 
 /// What was tried last time and is in no file, and how to have it again.
@@ -95,14 +113,27 @@ pub(super) fn keys(app: &App, page: &mut Page<'_>, area: Area) {
 }
 
 fn hints(place: Place) -> Vec<(Action, &'static str)> {
-    let help = (Action::Help, "help");
-    let leave = (Action::Leave, "leave");
     match place {
-        Place::On(Screen::Chooser) => {
-            vec![help, (Action::Accept, "open"), (Action::Type, "type a path"), leave]
+        Place::On(screen) => {
+            let mut all = vec![(Action::Help, "help")];
+            all.extend(on(screen));
+            all.push((Action::Leave, "leave"));
+            all
         }
-        Place::On(Screen::Values) => vec![
-            help,
+        Place::Pointing => vec![(Action::Stop, "done"), (Action::Backwards, "where from"), (Action::NoPoint, "away")],
+        Place::Dragging => vec![(Action::Stop, "done"), (Action::Closer, "closer"), (Action::Wider, "wider")],
+        Place::Reading => vec![(Action::Step(Step::On), "on"), (Action::Stop, "back")],
+        Place::Typing => {
+            vec![(Action::Accept, "take it"), (Action::Stop, "leave it"), (Action::Complete, "complete, or change")]
+        }
+    }
+}
+
+/// The keys of a screen, without those that all have.
+fn on(screen: Screen) -> Vec<(Action, &'static str)> {
+    match screen {
+        Screen::Chooser => vec![(Action::Accept, "open"), (Action::Type, "type a path")],
+        Screen::Values => vec![
             (Action::Fine(Step::On), "raise"),
             (Action::Fine(Step::Back), "lower"),
             (Action::Type, "type"),
@@ -110,10 +141,8 @@ fn hints(place: Place) -> Vec<(Action, &'static str)> {
             (Action::Record, "new scenario"),
             (Action::Write, "write"),
             (Action::Show(Screen::Equilibria), "equilibria"),
-            leave,
         ],
-        Place::On(Screen::Interactions) => vec![
-            help,
+        Screen::Interactions => vec![
             (Action::Step(Step::On), "next"),
             (Action::Other, "direct or net"),
             (Action::Absent, "absent too"),
@@ -122,10 +151,8 @@ fn hints(place: Place) -> Vec<(Action, &'static str)> {
             (Action::Scenario(Step::On), "scenario"),
             (Action::Show(Screen::Equilibria), "equilibria"),
             (Action::Write, "write"),
-            leave,
         ],
-        Place::On(Screen::Knock) => vec![
-            help,
+        Screen::Knock => vec![
             (Action::Step(Step::On), "next"),
             (Action::Knock(Step::Back), "take more"),
             (Action::Knock(Step::On), "less"),
@@ -134,25 +161,27 @@ fn hints(place: Place) -> Vec<(Action, &'static str)> {
             (Action::Scenario(Step::On), "scenario"),
             (Action::Show(Screen::Equilibria), "equilibria"),
             (Action::Write, "write"),
-            leave,
         ],
-        Place::On(_) => vec![
-            help,
+        Screen::Response => vec![
+            (Action::Fine(Step::On), "move the rule"),
+            (Action::Threshold(Step::On), "next threshold"),
+            (Action::Step(Step::On), "next state"),
+            (Action::Other, "control"),
+            (Action::Species(Axis::Upwards), "quantity"),
+            (Action::TakeOver, "try it"),
+            (Action::Show(Screen::Equilibria), "equilibria"),
+            (Action::Write, "write"),
+        ],
+        _ => vec![
             (Action::Step(Step::On), "next"),
             (Action::Scenario(Step::On), "scenario"),
             (Action::Show(Screen::SideBySide), "side by side"),
             (Action::Show(Screen::Values), "values"),
+            (Action::Show(Screen::Response), "thresholds"),
             (Action::Show(Screen::Knock), "after a knock"),
             (Action::Show(Screen::Interactions), "interactions"),
             (Action::Point, "move a point"),
             (Action::Write, "write"),
-            leave,
         ],
-        Place::Pointing => vec![(Action::Stop, "done"), (Action::Backwards, "where from"), (Action::NoPoint, "away")],
-        Place::Dragging => vec![(Action::Stop, "done"), (Action::Closer, "closer"), (Action::Wider, "wider")],
-        Place::Reading => vec![(Action::Step(Step::On), "on"), (Action::Stop, "back")],
-        Place::Typing => {
-            vec![(Action::Accept, "take it"), (Action::Stop, "leave it"), (Action::Complete, "complete, or change")]
-        }
     }
 }

@@ -25,7 +25,14 @@ pub(super) struct Shown<'s> {
     is_late: bool,
     app: &'s App,
     study: &'s Study,
-    slot: usize,
+    /// Names of the states.
+    ids: Vec<String>,
+    /// The state that is selected.
+    chosen: Option<usize>,
+    /// The user's point.
+    point: Option<[f64; 2]>,
+    /// Whether the paths from and to it are.
+    has_paths: bool,
     size: Size,
 }
 
@@ -36,7 +43,47 @@ impl<'s> Shown<'s> {
         let wanted = painting(study, slot, size)?;
         let is_late = app.desk.known(&Task::Paint(wanted.clone())).is_none();
         let before = if is_late { app.desk.before(&wanted).cloned() } else { None };
-        Some(Self { painting: before.unwrap_or(wanted), is_late, app, study, slot, size })
+        let is_current = slot == study.current;
+        let chosen = is_current.then_some(study.chosen);
+        let (painting, ids) = (before.unwrap_or(wanted), study.names(slot).to_vec());
+        Some(Self {
+            painting,
+            is_late,
+            app,
+            study,
+            ids,
+            chosen,
+            point: study.sketch.point,
+            has_paths: is_current,
+            size,
+        })
+    }
+
+    /// Of states that move, for an area; while it is being computed that of a moment ago, whose states have no names.
+    pub(super) fn moving(
+        app: &'s App,
+        study: &'s Study,
+        wanted: Painting,
+        ids: Vec<String>,
+        chosen: Option<usize>,
+        area: Area,
+    ) -> Self {
+        let size = Size { columns: area.columns.into(), rows: area.rows.into() };
+        let is_late = app.desk.known(&Task::Paint(wanted.clone())).is_none();
+        match app.desk.before_moving(&wanted).filter(|_| is_late).cloned() {
+            Some(painting) => Self {
+                painting,
+                is_late,
+                app,
+                study,
+                ids: Vec::new(),
+                chosen: None,
+                point: None,
+                has_paths: false,
+                size,
+            },
+            None => Self { painting: wanted, is_late, app, study, ids, chosen, point: None, has_paths: false, size },
+        }
     }
 
     fn view(&self) -> Option<View<'_>> {
@@ -45,7 +92,7 @@ impl<'s> Shown<'s> {
             model: &world.original.model,
             scenario: scene.0.scenario,
             solved: scene.solved()?,
-            ids: self.study.names(self.slot),
+            ids: &self.ids,
             slice,
             window: *window,
             scales: *scales,
@@ -53,7 +100,7 @@ impl<'s> Shown<'s> {
     }
 
     fn path(&self, backwards: bool) -> Option<&Path> {
-        let task = path(self.study, backwards).filter(|_| self.slot == self.study.current)?;
+        let task = path(self.study, backwards).filter(|_| self.has_paths)?;
         match self.app.desk.known(&task)? {
             Answer::Followed(path) => path.as_deref(),
             _ => None,
@@ -62,10 +109,9 @@ impl<'s> Shown<'s> {
 
     /// What is drawn over the picture.
     fn extras(&self) -> Extras<'_> {
-        let is_current = self.slot == self.study.current;
         Extras {
-            chosen: is_current.then_some(self.study.chosen),
-            point: self.study.sketch.point,
+            chosen: self.chosen,
+            point: self.point,
             forwards: self.path(false),
             backwards: self.path(true).filter(|_| self.study.sketch.backwards),
             most_arrows: (self.study.model().species.len() > 2).then_some(ARROWS),

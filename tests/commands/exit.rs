@@ -44,7 +44,7 @@ fn what_is_not_understood_ends_with_2_and_says_what_was_meant() {
     table(&["--columns", "sate"], "did you mean \"state\"?");
     check(&["table"], 2, "", "<MODEL>");
     check(&["tabel", MOOR], 2, "", "there is no command \"tabel\"; did you mean \"table\"?");
-    check(&["plot", MOOR], 2, "", "there is no command \"plot\"; there are check, table, compare, sketch");
+    check(&["plot", MOOR], 2, "", "there is no command \"plot\"; there are check, table, compare, response, sketch");
     check(&[MOOR, "another"], 2, "", "unexpected argument 'another'");
     check(&["--columns", "state", "table", MOOR], 2, "", "--columns belongs after the command");
     check(&["--strict", "table", MOOR], 2, "", "--strict belongs after the command");

@@ -60,11 +60,14 @@ fn what_is_shown_is_current() {
     // Screens are marked, and held to the program by the tests of screens.
     let is_screen = |block: &&str| README.contains(&format!(" -->\n```text\n{block}"));
     let printed: Vec<&str> = blocks("text").into_iter().filter(|block| !is_screen(block)).collect();
-    let [shown, wrong, table, compared, sketch] = printed[..] else { panic!("five blocks of output") };
+    let [shown, wrong, table, compared, response, sketch] = printed[..] else { panic!("six blocks of output") };
     assert_eq!(run("check", &model()), (format!("{shown}\n"), Some(0)));
     assert_eq!(run("check", &model().replace("a*H*P", "a*h*P")), (format!("{wrong}\n"), Some(1)));
     assert_eq!(run("table", &model()), (format!("{table}\n"), Some(0)));
     assert_eq!(run("compare", &model()), (format!("{compared}\n"), Some(0)));
+    let of = ["response", "velmo.yaml", "--of", "nets", "--scenario", "ten nets"];
+    assert!(README.contains("response velmo.yaml --of nets --scenario \"ten nets\"`"));
+    assert_eq!(run_with(&of, &model()), (format!("{response}\n"), Some(0)));
     let half = ["sketch", "velmo.yaml", "--scenario", "half the nets", "--size", "78x22"];
     assert!(README.contains("sketch velmo.yaml --scenario \"half the nets\" --size 78x22`"));
     assert_eq!(run_with(&half, &model()), (format!("{sketch}\n"), Some(0)));

@@ -128,7 +128,7 @@ impl Bench {
     }
 
     fn done(&mut self, id: JobId, task: Task) -> Vec<Effect> {
-        let means = Means { threads: Threads::new(1), stop: &|| false, observer: &|_| {} };
+        let means = Means { threads: Threads::new(1), stop: &|| false, observer: &|_| {}, told: &|_| {} };
         update(&mut self.app, Msg::Answered(id, perform(task, &means)))
     }
 
@@ -183,7 +183,7 @@ impl Bench {
     /// Does one of the tasks that are put off; what it asks for is put off.
     pub(crate) fn do_one(&mut self, place: usize) {
         let Some((id, task)) = self.waiting.remove(place) else { return };
-        let means = Means { threads: Threads::new(1), stop: &|| false, observer: &|_| {} };
+        let means = Means { threads: Threads::new(1), stop: &|| false, observer: &|_| {}, told: &|_| {} };
         self.tell(Msg::Answered(id, perform(task, &means)));
     }
 

@@ -209,7 +209,7 @@ fn asked(bench: &mut Bench, key: char) -> (Vec<(JobId, Task)>, Vec<JobId>) {
 
 #[test]
 fn an_answer_that_was_overtaken_is_dropped() {
-    let means = Means { threads: Threads::new(1), stop: &|| false, observer: &|_| {} };
+    let means = Means { threads: Threads::new(1), stop: &|| false, observer: &|_| {}, told: &|_| {} };
     let mut bench = Bench::of(TWO);
     bench.press("<End>");
     let (first, stopped) = asked(&mut bench, 'a');

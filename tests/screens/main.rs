@@ -11,6 +11,7 @@ mod looks;
 #[path = "../tables/markdown.rs"]
 mod markdown;
 mod readme;
+mod response;
 mod saved;
 mod skeleton;
 #[path = "../tables/tex.rs"]

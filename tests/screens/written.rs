@@ -54,6 +54,19 @@ fn a_table_is_what_its_command_prints() {
         }
         assert_eq!(table("", name), printed(&arguments), "{name}");
     }
+    let alone = ["response", model, "--of", "E", "--scenario", "present fleet"];
+    for (name, form) in
+        [("c.txt", "text"), ("c.csv", "csv"), ("c.md", "markdown"), ("c.json", "json"), ("c.tex", "latex")]
+    {
+        let mut arguments = alone.to_vec();
+        if form != "text" {
+            arguments.extend(["--format", form]);
+        }
+        // Wherever the rule stands.
+        assert_eq!(table("T<Right>", name), printed(&arguments), "{name}");
+    }
+    let tried = ["response", model, "--of", "E", "--scenario", "present fleet", "--set", "E=1.05"];
+    assert_eq!(table("T<Right>t", "d.txt"), printed(&tried));
     // With a value tried, the scenario that is looked at, by a command that sets it.
     let tried = ["table", model, "--scenario", "half the effort", "--set", "E=0.55"];
     assert_eq!(table("fv<Right>", "b.txt"), printed(&tried));

@@ -21,7 +21,7 @@ pub(super) struct Class {
 
 /// How the leading eigenvalues lie to each other; what paths look like beside a node or spiral.
 #[derive(Clone, Copy, PartialEq, Eq)]
-enum Look {
+pub(super) enum Look {
     Node,
     Spiral,
     Star,
@@ -144,7 +144,7 @@ impl Linear<'_> {
     }
 }
 
-fn kind(dimensions: Dimensions, critical_pair: bool, look: Look) -> Kind {
+pub(super) fn kind(dimensions: Dimensions, critical_pair: bool, look: Look) -> Kind {
     let Dimensions { stable, centre, unstable } = dimensions;
     // Equal eigenvalues have words of their own only where both are on one side.
     match (unstable > 0, stable > 0, centre > 0) {

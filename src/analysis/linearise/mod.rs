@@ -5,12 +5,13 @@
 //! [`Nonlinear`] answers where an eigenvalue is critical: real part 0, for a map modulus 1. Start at [`Lineariser`].
 //! `jacobian` evaluates, `written` does so for the numbers as the file has them, `proof` (on `planar` and `place`) says what holds for every Jacobian between the bounds, `critical` how
 //! much a computed eigenvalue may be off (`clear` where large communities need few vectors for it), `classify` makes words of
-//! both, `nonlinear` looks at the higher terms.
+//! both (`light` without proofs, for branches), `nonlinear` looks at the higher terms.
 
 mod classify;
 mod clear;
 mod critical;
 mod jacobian;
+pub(in crate::analysis) mod light;
 mod nonlinear;
 mod place;
 mod planar;
@@ -25,6 +26,7 @@ use crate::num::eigen::{Spectrum, Unsolved, eigenvalues, spectrum};
 use crate::num::interval::Interval;
 use classify::Linear;
 use jacobian::Rows;
+pub use nonlinear::forced::{Coefficient, Forced};
 use place::Border;
 use proof::Proof;
 

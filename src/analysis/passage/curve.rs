@@ -165,13 +165,13 @@ impl<'f> Curve<'f> {
     }
 }
 
-pub(super) fn dot(a: &[f64], b: &[f64]) -> f64 {
+pub(in crate::analysis) fn dot(a: &[f64], b: &[f64]) -> f64 {
     a.iter().zip(b).map(|(a, b)| a * b).sum()
 }
 
 /// Solves A x = b in place, by elimination with rows scaled and partial pivoting; the sign of det A. `None` where a pivot
 /// is 0 or not finite.
-fn solve(a: &mut [f64], b: &mut [f64]) -> Option<f64> {
+pub(in crate::analysis) fn solve(a: &mut [f64], b: &mut [f64]) -> Option<f64> {
     let n = b.len();
     let mut sign = 1.0;
     for (row, b) in a.chunks_exact_mut(n).zip(b.iter_mut()) {

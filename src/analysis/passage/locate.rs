@@ -9,7 +9,7 @@ const KNOWN: f64 = 1e-12;
 /// A place between 0 and `length` where a number is 0 that is `first` at 0 and of the other sign at `length`; false
 /// position with the weight of a side that stays halved (the Illinois rule; Dowell & Jarratt 1971, from memory). The last
 /// evaluation is at the place. `None` where it cannot be evaluated on the way, or has no other sign.
-pub(super) fn crossing(at: &mut dyn FnMut(f64) -> Option<f64>, first: f64, length: f64) -> Option<f64> {
+pub(in crate::analysis) fn crossing(at: &mut dyn FnMut(f64) -> Option<f64>, first: f64, length: f64) -> Option<f64> {
     let (mut low, mut high) = ((0.0, first), (length, at(length)?));
     if first == 0.0 {
         at(0.0)?;

@@ -14,7 +14,7 @@ mod agree;
 mod curve;
 mod face;
 mod identity;
-mod locate;
+pub(in crate::analysis) mod locate;
 mod walk;
 
 use std::collections::HashMap;
@@ -24,9 +24,11 @@ use super::prepare::Prepared;
 use crate::expr::graph::{Graph, NodeId};
 use crate::model::{Model, SpeciesId};
 use curve::Curve;
+pub(in crate::analysis) use curve::{dot, solve};
 pub(in crate::analysis) use face::restricted;
 use face::{Face, Rows};
 pub use identity::{Identities, identify};
+pub(in crate::analysis) use locate::crossing;
 use walk::{Course, End, Ground, Obstacle, Walk};
 
 /// What becomes of an equilibrium on the way to another scenario. Shares of the way are counted from the first scenario of

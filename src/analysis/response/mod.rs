@@ -5,7 +5,43 @@
 //! that defines them (Kuznetsov 2004, ch. 10), and only the count of equilibria between stations may be proved. `equations`
 //! has a scenario's rows with controls as inputs; start there for anything that moves a parameter.
 
+mod advice;
+mod bands;
+pub mod chart;
+mod closest;
+mod cover;
+mod curve;
+mod defining;
 pub mod equations;
+mod events;
+mod footing;
+mod front;
+pub mod locate;
+mod margins;
+mod open_access;
+mod picture;
+mod piece;
+mod ray;
+mod registry;
+mod removal;
+mod respond;
+mod stations;
+mod stretches;
+mod surface;
+mod switch;
+mod terrain;
+mod types;
+mod undefined;
+mod walk;
+mod watch;
+mod yields;
+
+pub use advice::advise;
+pub use bands::band;
+pub use chart::chart;
+pub use front::front;
+pub use margins::margins;
+pub use respond::respond;
 
 use nalgebra::Complex;
 
@@ -234,7 +270,7 @@ impl Response {
 /// How a state is lost at the end of its band.
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub enum Edge {
-    /// At this threshold of the response.
+    /// At this threshold of the response; of a band that no response was needed for, at this end's threshold of its own.
     Threshold(usize),
     /// Nothing happens up to the end of the range.
     Range,
@@ -313,7 +349,7 @@ pub struct BestYield {
     pub branch: usize,
     /// Whether a stable state has it; otherwise it is only approached.
     pub attained: bool,
-    /// The edge at which it is approached; `None` where it is attained, or the range ends there.
+    /// The edge at which it is approached; `None` where it is attained, or the branch was not followed further.
     pub edge: Option<usize>,
     /// The nearest threshold at which the state would be lost, above or below, and the distance to it as a share of the
     /// control at the yield; `None` where there is none in the range.
@@ -329,6 +365,9 @@ pub struct Removal {
     pub at: Option<f64>,
     /// The threshold there.
     pub threshold: Option<usize>,
+    /// Whether from there on, up to the end of the range, a stable state without it is on the picture; otherwise it may
+    /// live on in cycles.
+    pub settles_without: bool,
 }
 
 /// Where a harvest's value is 0 and would fall on: the effort at which open access settles (Gordon 1954).

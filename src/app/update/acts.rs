@@ -1,6 +1,6 @@
 //! What the user wants, on every screen.
 
-use super::{entry, interactions, knock, record, session, sketch, values};
+use super::{entry, interactions, knock, record, response, session, sketch, values};
 use crate::app::action::{Action, Step};
 use crate::app::beside::ids;
 use crate::app::geometry::{equilibria, frame, listed, values as parts_of_values};
@@ -34,6 +34,17 @@ pub(super) fn act(app: &mut App, action: Action) -> Vec<Effect> {
         Action::TakeUp => session::take_up(app),
         Action::Complete => return entry::complete(app),
         Action::Reload => reload(app),
+        Action::Fine(_)
+        | Action::Coarse(_)
+        | Action::Fit
+        | Action::Species(_)
+        | Action::Other
+        | Action::Threshold(_)
+        | Action::TakeOver
+            if app.screen == Screen::Response =>
+        {
+            response::act(app, action);
+        }
         Action::Closer
         | Action::Wider
         | Action::Fit
@@ -51,7 +62,7 @@ pub(super) fn act(app: &mut App, action: Action) -> Vec<Effect> {
         }
         Action::Other | Action::Knock(_) | Action::Scroll(_) if app.screen == Screen::Knock => knock::act(app, action),
         Action::Other => other(app),
-        Action::Knock(_) | Action::Absent | Action::Scroll(_) => {}
+        Action::Knock(_) | Action::Absent | Action::Scroll(_) | Action::Threshold(_) | Action::TakeOver => {}
     }
     Vec::new()
 }
@@ -72,9 +83,11 @@ fn stop(app: &mut App) -> Vec<Effect> {
         }
         return Vec::new();
     }
-    let search = app.desk.search().map(|job| job.id);
-    if let Some(id) = search {
-        app.say("stopping the search");
+    let is_followed = app.screen == Screen::Response;
+    let following = app.desk.following().filter(|_| is_followed).map(|job| (job.id, "stopping: what is known stays"));
+    let search = app.desk.search().map(|job| (job.id, "stopping the search"));
+    if let Some((id, said)) = following.or(search) {
+        app.say(said);
         return vec![Effect::Stop(id)];
     }
     if app.study.is_some() && app.screen != Screen::Equilibria {
@@ -102,8 +115,10 @@ fn show(app: &mut App, screen: Screen) {
         let name = study.name_of_chosen();
         let row = ids(study, size).iter().position(|id| Some(*id) == name.as_deref());
         study.beside.row = row.unwrap_or(study.beside.row);
-        if screen == Screen::Values {
-            values::show(study);
+        match screen {
+            Screen::Values => values::show(study),
+            Screen::Response => response::show(study),
+            _ => {}
         }
     }
 }
@@ -134,6 +149,7 @@ fn walk(app: &mut App, step: Step) {
             let page = listed(parts_of_values(app.size, study.count()).list);
             study.parameter = stepped(study.parameter, study.model().parameters.len(), page, step);
         }
+        (None, Screen::Response, Some(_)) => response::walk(app, step),
         (None, Screen::SideBySide, Some(study)) => {
             let ids = ids(study, app.size);
             let row = stepped(study.beside.row, ids.len(), page, step);

@@ -13,6 +13,7 @@ use crate::diag::render::render;
 pub(super) fn arrive(app: &mut App, msg: Msg) -> Vec<Effect> {
     match msg {
         Msg::Answered(id, answer) => return answered(app, id, answer),
+        Msg::Partly(id, answer) => app.desk.take_part(id, answer),
         Msg::Advanced(id, progress) => app.desk.advance(id, progress),
         Msg::Written(what) => record::written(app, what),
         Msg::Completed(asked, completion) => entry::completed(app, &asked, completion),

@@ -1,6 +1,6 @@
 //! The only function that changes the state. Each answers with what is to be done outside.
 //!
-//! `acts` does what the user wants on every screen, `sketch` what concerns the sketch, `interactions` and `knock` what
+//! `acts` does what the user wants on every screen, `sketch` what concerns the sketch, `interactions`, `knock` and `response` what
 //! concerns those, `values` tried values, `entry` what is typed, `record` what is written, `chooser` which models there are,
 //! `arrivals` what comes from outside, `reread` a file that has changed, `session` what outlives the program. [`update()`]
 //! restores at its end what always holds: whatever is selected is
@@ -14,6 +14,7 @@ mod interactions;
 mod knock;
 mod record;
 mod reread;
+mod response;
 mod session;
 mod sketch;
 mod values;
@@ -72,4 +73,5 @@ fn settle(app: &mut App) {
     study.parameters_from = scrolled(study.parameters_from, study.parameter, parameters, room);
     interactions::settle(app);
     knock::settle(app);
+    response::settle(app);
 }

@@ -90,6 +90,8 @@ pub struct Facts {
     pub inside: Signs,
     /// Whether it depends on a state.
     pub state_dependent: bool,
+    /// Whether it depends on an abundance, and not just on parameters that move as states do.
+    abundance_dependent: bool,
     /// Bit i mod 64 is set where it depends on state i.
     states: u64,
 }
@@ -113,26 +115,32 @@ pub(super) fn of(graph: &Graph, operation: &Operation<NodeId>) -> Facts {
     let operands: Vec<Facts> = operation.operands().into_iter().flatten().map(|node| *graph.facts(node)).collect();
     let mut defined_inside = defined;
     let inside = if operands.is_empty() {
-        leaf_signs(operation, range)
+        leaf_signs(graph, operation, range)
     } else {
         signs(operation, &operands, &mut defined_inside).and(Signs::of(range))
     };
     let state_dependent = matches!(operation, Operation::State(_) | Operation::Interaction { .. })
         || operands.iter().any(|f| f.state_dependent);
+    let abundance_dependent = match operation {
+        Operation::State(i) => graph.domain_beyond(*i).is_none(),
+        Operation::Interaction { .. } => true,
+        _ => operands.iter().any(|f| f.abundance_dependent),
+    };
     // Where it depends on parameters alone whether this is defined, it is so at every state or at none.
-    let by_parameters = !state_dependent || divides_by_fixed(operation, &operands);
+    let by_parameters = !abundance_dependent || divides_by_fixed(operation, &operands);
     Facts {
         range,
         total: (defined || by_parameters) && operands.iter().all(|f| f.total),
         total_inside: (defined_inside || by_parameters) && operands.iter().all(|f| f.total_inside),
         inside,
         state_dependent,
+        abundance_dependent,
         states: leaf_states(operation) | operands.iter().fold(0, |all, f| all | f.states),
     }
 }
 
 fn divides_by_fixed(operation: &Operation<NodeId>, operands: &[Facts]) -> bool {
-    matches!(operation, Operation::Div(..)) && !operands[1].state_dependent
+    matches!(operation, Operation::Div(..)) && !operands[1].abundance_dependent
 }
 
 fn leaf_states(operation: &Operation<NodeId>) -> u64 {
@@ -143,8 +151,19 @@ fn leaf_states(operation: &Operation<NodeId>) -> u64 {
     }
 }
 
-fn leaf_signs(operation: &Operation<NodeId>, range: Interval) -> Signs {
-    if matches!(operation, Operation::State(_)) { Signs::POSITIVE } else { Signs::of(range) }
+fn leaf_signs(graph: &Graph, operation: &Operation<NodeId>, range: Interval) -> Signs {
+    match operation {
+        Operation::State(i) if graph.domain_beyond(*i).is_none() => Signs::POSITIVE,
+        _ => Signs::of(range),
+    }
+}
+
+impl Graph {
+    /// The domain of a state that is no abundance.
+    fn domain_beyond(&self, state: usize) -> Option<Interval> {
+        let abundances = self.states - self.beyond.len();
+        self.beyond.get(state.checked_sub(abundances)?).copied()
+    }
 }
 
 /// Enclosure over the whole domain; clears `defined` where the operation itself is not defined and continuous there.
@@ -152,7 +171,7 @@ fn range(graph: &Graph, operation: &Operation<NodeId>, defined: &mut bool) -> In
     let r = |node: NodeId| graph.facts(node).range;
     match *operation {
         Operation::Constant(value) => Interval::point(value.get()),
-        Operation::State(_) => Interval::new(0.0, f64::INFINITY),
+        Operation::State(i) => graph.domain_beyond(i).unwrap_or(Interval::new(0.0, f64::INFINITY)),
         Operation::Parameter(i) => graph.parameters[i],
         Operation::Neg(a) => -r(a),
         Operation::Add(a, b) => r(a) + r(b),

@@ -170,11 +170,14 @@ pub enum Variable {
 
 /// The graph: nodes in topological order, and what is known of each.
 ///
-/// Facts hold for states in [0, ∞) and parameters in the domains given to [`Graph::new`]; a tape made from the graph
+/// Facts hold for states in [0, ∞) (in a widened graph, for those beyond the abundances in the domains that they have there)
+/// and parameters in the domains given to [`Graph::new`]; a tape made from the graph
 /// computes the same function outside them too, but rules that relied on a sign may then have widened its domain.
 #[derive(Clone, Debug)]
 pub struct Graph {
     states: usize,
+    /// The values that states after the abundances may have, where there are any: parameters that move.
+    beyond: Vec<Interval>,
     parameters: Vec<Interval>,
     nodes: Vec<Operation<NodeId>>,
     facts: Vec<Facts>,
@@ -188,6 +191,7 @@ impl Graph {
     pub fn new(states: usize, parameters: Vec<Interval>) -> Self {
         Self {
             states,
+            beyond: Vec::new(),
             parameters,
             nodes: Vec::new(),
             facts: Vec::new(),

@@ -1,4 +1,5 @@
-//! The same rows with some parameters known to be 0: a quota of nothing, an effort of nothing.
+//! The same rows with something put in another's place: 0 for some parameters (a quota of nothing, an effort of nothing),
+//! or one smooth piece for a choice between two.
 
 use std::collections::HashMap;
 
@@ -24,5 +25,40 @@ impl Graph {
             new.insert(node, rebuilt);
         }
         nodes.iter().map(|node| new[node]).collect()
+    }
+
+    /// The nodes with some nodes put in the place of others, `(what, by)`, for all that is made of them; also in what is put
+    /// there, where that is an operand of what it replaces.
+    pub fn replaced(&mut self, nodes: &[NodeId], changes: &[(NodeId, NodeId)]) -> Vec<NodeId> {
+        let mut new: HashMap<NodeId, NodeId> = HashMap::new();
+        for node in self.reachable(nodes) {
+            let rebuilt = if let Some((_, by)) = changes.iter().find(|(what, _)| *what == node) {
+                new.get(by).copied().unwrap_or(*by)
+            } else {
+                let operation = self.operation(node);
+                self.rebuild(operation.map(|operand| new[&operand]))
+            };
+            new.insert(node, rebuilt);
+        }
+        nodes.iter().map(|node| new[node]).collect()
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::super::Graph;
+
+    #[test]
+    fn pieces_are_put_in_the_place_of_choices_within_each_other() {
+        let mut graph = Graph::new(3, Vec::new());
+        let [x, y, z] = [0, 1, 2].map(|i| graph.state(i));
+        let inner = graph.min(x, y);
+        let outer = graph.max(inner, z);
+        let whole = graph.mul(outer, z);
+        let expected = graph.mul(y, z);
+        assert_eq!(graph.replaced(&[whole], &[(inner, y), (outer, inner)]), [expected]);
+        assert_eq!(graph.replaced(&[whole, inner], &[]), [whole, inner]);
+        let square = graph.mul(z, z);
+        assert_eq!(graph.replaced(&[whole], &[(outer, z)]), [square]);
     }
 }

@@ -7,6 +7,7 @@
 use std::collections::HashMap;
 
 use super::{Graph, NodeId, Operation};
+use crate::num::interval::Interval;
 
 /// Rows in a graph of more states.
 #[derive(Clone, Debug)]
@@ -21,10 +22,15 @@ impl Graph {
     /// The nodes over states of which the given parameters are the next after the species, in the order given, and `spare`
     /// more after these. Rows of matrix blocks are written out as sums, for a block is as wide as the graph.
     ///
-    /// A parameter that moves may be negative, and so may a spare state: as with states below 0, rules that relied on a
-    /// sign may then give a row a value where it has none, and never another value.
+    /// A spare state may have any sign, and a parameter that moves too where its domain holds negative numbers. As with
+    /// parameters that do not move, no rule minds that a row may have no value at some of theirs.
     pub fn widened(&self, nodes: &[NodeId], moving: &[usize], spare: usize) -> Widened {
         let mut graph = Graph::new(self.states + moving.len() + spare, self.parameters.clone());
+        // Further values than the domain may be asked for, but not of another sign.
+        let domain = |&i: &usize| {
+            if self.parameters[i].lo() >= 0.0 { Interval::new(0.0, f64::INFINITY) } else { Interval::ENTIRE }
+        };
+        graph.beyond = moving.iter().map(domain).chain(std::iter::repeat_n(Interval::ENTIRE, spare)).collect();
         let mut new: HashMap<NodeId, NodeId> = HashMap::new();
         for node in self.reachable(nodes) {
             let rebuilt = match self.operation(node) {
@@ -64,6 +70,28 @@ mod tests {
     use crate::num::interval::Interval;
 
     #[test]
+    fn what_a_moving_parameter_leaves_without_a_value_is_no_reason_to_be_there() {
+        // x (1 − a)^b is 0 at x = 0, whichever of a and b moves, and |a| is not a where a may be negative.
+        let mut graph = Graph::new(1, vec![Interval::new(0.0, 1.0), Interval::new(-1.0, 1.0)]);
+        let (x, a, b, one) = (graph.state(0), graph.parameter(0), graph.parameter(1), graph.one());
+        let left = graph.sub(one, a);
+        let share = graph.pow(left, b);
+        let row = graph.mul(x, share);
+        let size = graph.apply(crate::expr::function::Function::Abs, b);
+        for moving in [vec![0], vec![1], vec![0, 1]] {
+            let mut wide = graph.widened(&[row, size], &moving, 0);
+            assert!(wide.graph.vanishes_at_zero(wide.nodes[0], 0), "{moving:?}");
+            let divided = wide.graph.divide(wide.nodes[0], 0).quotient;
+            assert!(divided.is_some(), "{moving:?}");
+            let inputs: Vec<usize> = (0..=moving.len()).collect();
+            let tape = Tape::over(&wide.graph, &wide.nodes[1..], &inputs);
+            let mut run = tape.start(&[0.5, -0.25]);
+            run.at(&[vec![2.0], vec![-0.25; moving.len()]].concat());
+            assert_eq!(*run.output(0), 0.25, "{moving:?}");
+        }
+    }
+
+    #[test]
     fn a_parameter_that_moves_is_an_input_like_any_other() {
         let mut graph = Graph::new(2, vec![Interval::new(0.0, 9.0), Interval::new(0.0, 9.0)]);
         let (x, r, c) = (graph.state(0), graph.parameter(0), graph.parameter(1));
@@ -79,5 +107,18 @@ mod tests {
         run.at(&[3.0, 4.0, 7.0]);
         assert_eq!(*run.output(0), 3.0 * (0.5 + 6.0 + 28.0));
         assert_eq!(run.gradient(0), Some(&[0.5 + 12.0 + 28.0, 21.0, 12.0][..]));
+    }
+
+    /// A loss of x of which a share (1 − a)^b is spared, a moving: absence of x stays absence, whatever has no value at a > 1.
+    #[test]
+    fn what_a_moving_parameter_leaves_undefined_vanishes_all_the_same() {
+        let mut graph = Graph::new(1, vec![Interval::new(0.0, 0.9), Interval::new(1.0, 3.0)]);
+        let (x, a, b, one) = (graph.state(0), graph.parameter(0), graph.parameter(1), graph.one());
+        let spared = graph.sub(one, a);
+        let spared = graph.pow(spared, b);
+        let row = graph.mul(x, spared);
+        let mut wide = graph.widened(&[row], &[0], 0);
+        assert!(wide.graph.vanishes_at_zero(wide.nodes[0], 0));
+        assert!(!wide.graph.vanishes_at_zero(wide.nodes[0], 1));
     }
 }

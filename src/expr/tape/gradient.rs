@@ -6,6 +6,7 @@
 use super::number::{Domain, Number};
 use super::run::{Run, perform};
 use super::{Register, Tape};
+use crate::expr::function::Quotient;
 use crate::expr::graph::Operation;
 
 /// Components of gradients between two questions whether to go on: a millisecond's work or so over intervals.
@@ -154,9 +155,13 @@ impl<T: Number> Known<'_, T> {
                 self.linear(mask, out, [(u, &outer)]);
             }
             Operation::PowerQuotient(k, u, p) => {
-                // An exponent that moves with the state has no place in any rule that makes this operation.
                 let outer = self.value(u).power_quotient(k + 1, self.value(p), domain);
-                self.linear(mask, out, [(u, &outer)]);
+                if self.of(p).1 == 0 {
+                    return self.linear(mask, out, [(u, &outer)]);
+                }
+                // An exponent moves only where a parameter does, as a control that is followed.
+                let through = through_exponent(k, self.value(u), self.value(p), domain);
+                self.linear(mask, out, [(u, &outer), (p, &through)]);
             }
             Operation::Interaction { block, row } => self.interaction(block, row, out),
             Operation::Constant(_) | Operation::State(_) | Operation::Parameter(_) => {}
@@ -253,6 +258,56 @@ impl<T: Number> Known<'_, T> {
         }
         for &(column, register) in &block.formulas[row] {
             out[column] = self.value(register).clone();
+        }
+    }
+}
+
+/// The k-th derivative in u of (1 + u)^p ln(1 + u)/u, which is what an exponent adds to ((1 + u)^p − 1)/u; by Leibniz.
+fn through_exponent<T: Number>(k: u8, u: &T, p: &T, domain: &mut Domain) -> T {
+    let base = T::constant(1.0).add(u);
+    let mut sum = T::constant(0.0);
+    let mut binomial = 1.0;
+    for j in 0..=k {
+        // The power's derivative of order k − j times the logarithm's of order j.
+        let mut power = T::constant(binomial);
+        let mut exponent = p.clone();
+        for _ in j..k {
+            power = power.mul(&exponent);
+            exponent = exponent.sub(&T::constant(1.0));
+        }
+        let power = power.mul(&base.pow(&exponent, domain));
+        sum = sum.add(&power.mul(&u.quotient(Quotient::Log1p, j, domain)));
+        binomial *= f64::from(k - j) / f64::from(j + 1);
+    }
+    sum
+}
+
+#[cfg(test)]
+mod tests {
+    use crate::expr::graph::{Graph, Variable};
+    use crate::expr::tape::Tape;
+
+    #[test]
+    fn an_exponent_that_moves_has_a_slope() {
+        // x ((1 + x)^p − 1)/x, divided by x as rows are, and its derivatives by x, over x and p.
+        let mut graph = Graph::new(2, Vec::new());
+        let (x, p, one) = (graph.state(0), graph.state(1), graph.one());
+        let base = graph.add(one, x);
+        let power = graph.pow(base, p);
+        let row = graph.sub(power, one);
+        let mut node = graph.divide(row, 0).quotient.unwrap_or(row);
+        let (u, e) = (0.75f64, 1.6f64);
+        let (power, log) = ((1.0 + u).powf(e), (1.0 + u).ln());
+        // By hand: d/dp of ((1+u)^p − 1)/u and of its first u-derivative p (1+u)^(p−1)/u − ((1+u)^p − 1)/u².
+        let lower = power / (1.0 + u);
+        let expected = [power * log / u, (lower + e * lower * log) / u - power * log / (u * u)];
+        for expected in expected {
+            let tape = Tape::new(&graph, &[node]);
+            let mut run = tape.start_gradient::<f64>(&[]);
+            run.at(&[u, e]);
+            let found = run.gradient(0).map_or(f64::NAN, |slopes| slopes[1]);
+            assert!((found - expected).abs() <= 1e-13 * expected.abs(), "{found} for {expected}");
+            node = graph.derivative(node, Variable::State(0));
         }
     }
 }

@@ -136,6 +136,8 @@ impl<T: Number> Number for Jet<T> {
     }
 
     fn power_quotient(&self, k: u8, p: &Self, domain: &mut Domain) -> Self {
+        // No direction that is asked for moves a parameter.
+        domain.defined &= p.is_still();
         let derivatives = std::array::from_fn(|j| {
             if j > 0 && self.is_still() {
                 return T::constant(0.0);

@@ -8,12 +8,14 @@ use crate::model::{Model, ParameterId};
 /// What a table was asked for by, without the options that make no difference to it.
 #[derive(Clone, Copy, Debug)]
 pub struct Command<'c> {
-    /// Its word: `table`, `compare`.
+    /// Its word: `table`, `compare`, `response`.
     pub word: &'c str,
     /// The model's path as it was given; without, the model that is compiled in.
     pub path: Option<&'c str>,
     /// The model.
     pub model: &'c Model,
+    /// Parameters that are varied, each over this range where it is not its own.
+    pub varied: &'c [(ParameterId, Option<[f64; 2]>)],
     /// The scenarios, where not all.
     pub scenarios: &'c [usize],
     /// Parameters set from outside.
@@ -31,6 +33,13 @@ impl fmt::Display for Command<'_> {
         f.write_str("restpoint")?;
         if let Some(path) = self.path {
             write!(f, " {} {}", self.word, quoted(path))?;
+        }
+        for (id, range) in self.varied {
+            let name = self.model.parameters.get(id.0).map_or("", |parameter| &parameter.name);
+            write!(f, " --of {}", quoted(name))?;
+            if let Some([from, to]) = range {
+                write!(f, " --from {from} --to {to}")?;
+            }
         }
         for scenario in self.scenarios.iter().filter_map(|&scenario| self.model.scenarios.get(scenario)) {
             write!(f, " --scenario {}", quoted(&scenario.name))?;

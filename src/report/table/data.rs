@@ -18,18 +18,27 @@ pub fn json(table: &Table<'_>) -> Value {
         Ok(solved) => scenario(table, scene, solved, ids),
         Err(problems) => failed(table, scene, problems),
     });
-    json!({
+    framed(table, &[], scenarios.collect())
+}
+
+/// Scenarios between what they are of, with keys of the whole before them, and how they were made.
+pub(in crate::report) fn framed(table: &Table<'_>, before: &[(&str, Value)], scenarios: Vec<Value>) -> Value {
+    let mut all = json!({
         "tool": {"name": "restpoint", "version": env!("CARGO_PKG_VERSION")},
         "model": model(table),
-        "scenarios": scenarios.collect::<Vec<_>>(),
-        "run": {
-            "command": table.command,
-            "set": table.set.iter().map(|&(id, value)| (table.parameter(id), exact(value))).collect::<Map<_, _>>(),
-            "budget": {"seconds": table.limits.seconds, "boxes": table.limits.boxes},
-            "interrupted": table.interrupted,
-        },
-        "caution": words::CAUTION,
-    })
+    });
+    for (key, value) in before {
+        all[*key] = value.clone();
+    }
+    all["scenarios"] = scenarios.into();
+    all["run"] = json!({
+        "command": table.command,
+        "set": table.set.iter().map(|&(id, value)| (table.parameter(id), exact(value))).collect::<Map<_, _>>(),
+        "budget": {"seconds": table.limits.seconds, "boxes": table.limits.boxes},
+        "interrupted": table.interrupted,
+    });
+    all["caution"] = words::CAUTION.into();
+    all
 }
 
 fn model(table: &Table<'_>) -> Value {
@@ -120,7 +129,7 @@ fn overlay(table: &Table<'_>, scenario: &Scenario, solved: &Solved) -> Value {
 }
 
 /// The contract has one error a scenario: the first.
-fn failed(table: &Table<'_>, scene: &Scene, problems: &[Diagnostic]) -> Value {
+pub(in crate::report) fn failed(table: &Table<'_>, scene: &Scene, problems: &[Diagnostic]) -> Value {
     let error = problems.first().map(|problem| {
         let (file, line, column) = position(&table.model.sources, problem.at);
         json!({"file": file, "line": line, "column": column, "message": problem.message})

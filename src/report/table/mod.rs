@@ -45,6 +45,7 @@ pub use command::Command;
 pub use csv::csv;
 pub(super) use csv::line;
 pub use data::json;
+pub(in crate::report) use data::{failed as failed_as_data, framed};
 pub use facts::{Case, Fact};
 pub use form::{FORMS, Form, pretty, written};
 pub use guide::guide;
@@ -242,7 +243,7 @@ impl<'t> Table<'t> {
     }
 
     /// Whether the model steps.
-    fn is_map(&self) -> bool {
+    pub(in crate::report) fn is_map(&self) -> bool {
         matches!(self.model.time, TimeKind::Discrete { .. })
     }
 

@@ -5,6 +5,7 @@ use super::layout::{Cell, Head};
 use super::{Row, Table};
 
 /// Headings, and as many cells in each row.
+#[derive(Clone, Debug)]
 pub(in crate::report) struct Sheet {
     pub(in crate::report) heads: Vec<Head>,
     pub(in crate::report) rows: Vec<Vec<Cell>>,

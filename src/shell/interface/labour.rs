@@ -67,10 +67,10 @@ impl Labour {
         let stop = Arc::new(AtomicBool::new(false));
         let to = match task {
             Task::Read(..) | Task::Solve { .. } => &self.slow,
-            Task::Name { .. } | Task::Compare { .. } => &self.between,
-            Task::Prepare(..) | Task::Paint(_) | Task::Follow { .. } | Task::Run(_) => &self.quick,
+            Task::Name { .. } | Task::Compare { .. } | Task::Respond { .. } => &self.between,
+            Task::Prepare(..) | Task::Paint(_) | Task::Follow { .. } | Task::Run(_) | Task::Cut { .. } => &self.quick,
         };
-        let is_quick = !matches!(task, Task::Read(..) | Task::Solve { .. });
+        let is_quick = !matches!(task, Task::Read(..) | Task::Solve { .. } | Task::Respond { .. });
         self.flags.insert(id, Flag { stop: Arc::clone(&stop), is_quick, asked: Instant::now() });
         let _ = to.send(Order { id, task, stop });
     }
@@ -110,7 +110,11 @@ fn work(orders: &Receiver<Order>, threads: Threads, events: &Events) {
     while let Ok(Order { id, task, stop }) = orders.recv() {
         let reporter = Reporter { id, events, state: Mutex::new((Progress::default(), Instant::now())) };
         let is_stopped = || stop.load(Ordering::Relaxed);
-        let answer = perform(task, &Means { threads, stop: &is_stopped, observer: &|done| reporter.add(done) });
+        let told = |part| {
+            let _ = events.send(Event::Msg(Msg::Partly(id, part)));
+        };
+        let observer = |done| reporter.add(done);
+        let answer = perform(task, &Means { threads, stop: &is_stopped, observer: &observer, told: &told });
         if events.send(Event::Msg(Msg::Answered(id, answer))).is_err() {
             return;
         }

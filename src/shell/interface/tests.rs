@@ -19,7 +19,7 @@ fn tell(app: &mut App, msg: Msg) {
     while let Some(msg) = waiting.pop_front() {
         for effect in update(app, msg) {
             if let Effect::Ask(id, task) = effect {
-                let means = Means { threads: Threads::new(1), stop: &|| false, observer: &|_| {} };
+                let means = Means { threads: Threads::new(1), stop: &|| false, observer: &|_| {}, told: &|_| {} };
                 waiting.push_back(Msg::Answered(id, perform(task, &means)));
             }
         }

@@ -2,10 +2,12 @@
 //!
 //! The equations reduced to the centre manifold, and their first coefficient that is not 0, enclosed over the bounds of the
 //! Jacobian and the state (Kuznetsov 2004, ch. 3, 5 and 8). `single` has one eigenvalue 0, or a multiplier 1 or −1; `pair` a
-//! pair on the border; `forms` the derivatives, `complex` the linear systems. Anything else on the border is left open. A
+//! pair on the border; `forms` the derivatives, `complex` the linear systems, `forced`
+//! the same where it is known from elsewhere what is critical. Anything else on the border is left open. A
 //! coefficient whose bounds hold 0 is taken for 0.
 
 mod complex;
+pub(super) mod forced;
 mod forms;
 mod pair;
 mod single;

@@ -23,9 +23,14 @@ pub(super) fn judge(critical: &Critical<'_>) -> Nonlinear {
         return open(Test::FirstLyapunov, None);
     }
     match coefficient(critical) {
-        Some(l1) => by_sign(l1, Test::FirstLyapunov, proven),
+        Some((l1, _)) => by_sign(l1, Test::FirstLyapunov, proven),
         None => open(Test::FirstLyapunov, None),
     }
+}
+
+/// The coefficient, and the sum of the sizes of its terms; `None` also near a strong resonance.
+pub(super) fn with_size(critical: &Critical<'_>) -> Option<(Interval, f64)> {
+    if critical.border == Border::Circle && is_resonant(critical) { None } else { coefficient(critical) }
 }
 
 fn is_resonant(critical: &Critical<'_>) -> bool {
@@ -34,7 +39,7 @@ fn is_resonant(critical: &Critical<'_>) -> bool {
     (1..=4).any(|k| (value.powi(k) - Complex::new(1.0, 0.0)).norm() <= RESONANT)
 }
 
-fn coefficient(critical: &Critical<'_>) -> Option<Interval> {
+fn coefficient(critical: &Critical<'_>) -> Option<(Interval, f64)> {
     let n = critical.order();
     let value = critical.on_border()?;
     let [left, right] = critical.vectors()?;
@@ -61,8 +66,10 @@ fn coefficient(critical: &Critical<'_>) -> Option<Interval> {
     let fast = on_manifold(&forms.quadratic(&q.conjugate(), &fast)?)?;
     let two = Interval::point(2.0);
     let sum: Scalar = std::array::from_fn(|k| cubic[k] - two * slow[k] - fast[k]);
+    let norm = |z: Scalar| z[0].mag().hypot(z[1].mag());
+    let terms = norm(cubic) + 2.0 * norm(slow) + norm(fast);
     Some(match border {
-        Border::Axis => sum[0].div(two * value[1], &mut true),
-        Border::Circle => product([value[0], -value[1]], sum)[0] * Interval::point(0.5),
+        Border::Axis => (sum[0].div(two * value[1], &mut true), terms / (2.0 * value[1].mid().abs())),
+        Border::Circle => (product([value[0], -value[1]], sum)[0] * Interval::point(0.5), 0.5 * terms),
     })
 }

@@ -100,6 +100,17 @@ impl Direction {
     }
 }
 
+impl Direction {
+    /// The coordinate of a + s b along the direction, and the sum of the sizes of what goes into it.
+    fn sum(&self, a: &[Interval], b: &[Interval], s: f64) -> (Interval, f64) {
+        let sum: Vec<Interval> = a.iter().zip(b).map(|(&a, &b)| a + Interval::point(s) * b).collect();
+        let along = inner(&self.p, &Vector::real(self.q.re.clone()))[0].mid().abs();
+        let sizes = a.iter().zip(b).zip(&self.p.re).map(|((a, b), p)| (a.mag() + b.mag()) * p.mag());
+        let terms = sizes.sum::<f64>() / if along > 0.0 { along } else { 1.0 };
+        (self.coordinate(&sum), terms)
+    }
+}
+
 /// Whether an absent species may be part of a critical eigenvector.
 fn takes_part(critical: &Critical<'_>, i: usize) -> bool {
     !stays_out(&shifted(critical, steady_value(critical)), i)
@@ -126,13 +137,39 @@ fn steady(critical: &Critical<'_>, direction: &Direction, forms: &mut Forms<'_>)
         }
         return Some(Nonlinear { verdict: Verdict::SemiStable, test, coefficient: quadratic.mid(), proven });
     }
-    let bend = bend(critical, direction, &second, quadratic)?;
-    let mixed = forms.quadratic(&direction.q, &bend)?;
-    let sum: Vec<Interval> =
-        third.iter().zip(&mixed.re).map(|(&third, &mixed)| third + mixed * Interval::point(0.5)).collect();
+    let (cubic, _) = cubic(critical, direction, forms, [&second, &third])?;
     let symmetric = direction.sides == Sides::Both && is_symmetric(critical, &direction.q);
     let test = if symmetric { Test::Pitchfork } else { Test::Cusp };
-    Some(by_sign(direction.coordinate(&sum), test, proven && quadratic == Interval::ZERO))
+    Some(by_sign(cubic, test, proven && quadratic == Interval::ZERO))
+}
+
+/// b, with the sum of the sizes of its terms, from the second and third derivatives along q.
+fn cubic(
+    critical: &Critical<'_>,
+    direction: &Direction,
+    forms: &mut Forms<'_>,
+    [second, third]: [&[Interval]; 2],
+) -> Option<(Interval, f64)> {
+    let bend = bend(critical, direction, second, direction.coordinate(second))?;
+    let mixed: Vec<Interval> =
+        forms.quadratic(&direction.q, &bend)?.re.iter().map(|&mixed| mixed * Interval::point(0.5)).collect();
+    Some(direction.sum(third, &mixed, 1.0))
+}
+
+/// The cubic coefficient whatever the quadratic one is, with the sum of the sizes of its terms; `None` where a species may
+/// not go to both sides.
+pub(super) fn cubic_with_size(critical: &Critical<'_>) -> Option<(Interval, f64)> {
+    let direction = Direction::of(critical, false).filter(|direction| direction.sides == Sides::Both)?;
+    let mut forms = critical.forms();
+    let [second, third] = forms.along(&direction.q.re)?;
+    cubic(critical, &direction, &mut forms, [&second, &third])
+}
+
+/// The coefficient of a multiplier −1, with the sum of the sizes of its terms; `None` where a species may not go to both
+/// sides.
+pub(super) fn flip_with_size(critical: &Critical<'_>) -> Option<(Interval, f64)> {
+    let direction = Direction::of(critical, true).filter(|direction| direction.sides == Sides::Both)?;
+    flip_coefficient(critical, &direction, &mut critical.forms())
 }
 
 /// h of the centre manifold x = u q + u² h/2.
@@ -145,18 +182,22 @@ fn bend(critical: &Critical<'_>, direction: &Direction, second: &[Interval], qua
 }
 
 fn flip(critical: &Critical<'_>, direction: &Direction, forms: &mut Forms<'_>) -> Option<Nonlinear> {
-    let [second, third] = forms.along(&direction.q.re)?;
-    let bend = shifted(critical, 1.0).solve(&Vector::real(second))?;
-    // (A − 1)⁻¹B(q, q) is twice that.
-    let mixed = forms.quadratic(&direction.q, &bend)?;
-    let sum: Vec<Interval> = third.iter().zip(&mixed.re).map(|(&third, &mixed)| third - mixed).collect();
-    let coefficient = direction.coordinate(&sum);
+    let (coefficient, _) = flip_coefficient(critical, direction, forms)?;
     if direction.sides != Sides::Both {
         return Some(open(Test::Flip, Some(coefficient.mid())));
     }
     // Here a positive coefficient attracts.
     let mirrored = by_sign(-coefficient, Test::Flip, critical.is_proven());
     Some(Nonlinear { coefficient: coefficient.mid(), ..mirrored })
+}
+
+/// c, with the sum of the sizes of its terms.
+fn flip_coefficient(critical: &Critical<'_>, direction: &Direction, forms: &mut Forms<'_>) -> Option<(Interval, f64)> {
+    let [second, third] = forms.along(&direction.q.re)?;
+    let bend = shifted(critical, 1.0).solve(&Vector::real(second))?;
+    // (A − 1)⁻¹B(q, q) is twice that.
+    let mixed = forms.quadratic(&direction.q, &bend)?;
+    Some(direction.sum(&third, &mixed.re, -1.0))
 }
 
 /// How nearly symmetric numbers must be to be taken for it, relative to their size.

@@ -20,8 +20,9 @@ pub(super) use compact::has_sums;
 pub(in crate::report) use compact::{sums, total};
 pub(in crate::report) use identity::sureness;
 pub(in crate::report) use linear::kind;
+pub(super) use path::Path;
+pub(in crate::report) use path::by_symbol;
 use path::{Get, humane};
-pub(super) use path::{Path, by_symbol};
 
 /// Numbers of one column that people are shown in a row; a square of them grows faster than any page.
 const MOST_SHOWN: usize = 150;

@@ -126,7 +126,10 @@ fn entries(table: &Table<'_>, between: &str) -> Vec<Path> {
 }
 
 /// Numbers under symbols.
-pub(in super::super) fn by_symbol(table: &Table<'_>, numbers: impl IntoIterator<Item = (usize, Option<f64>)>) -> Value {
+pub(in crate::report) fn by_symbol(
+    table: &Table<'_>,
+    numbers: impl IntoIterator<Item = (usize, Option<f64>)>,
+) -> Value {
     let named = |(place, x): (usize, Option<f64>)| Some((table.symbol(place)?.to_owned(), optional(x)));
     Value::Object(numbers.into_iter().filter_map(named).collect::<Map<_, _>>())
 }
