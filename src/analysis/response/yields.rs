@@ -9,7 +9,7 @@ use super::footing::Standing;
 use super::stretches::{Stretch, StretchEnd};
 use super::{BestYield, Point, Taking};
 use crate::analysis::passage::{crossing, dot};
-use crate::model::Model;
+use crate::model::{Aim, Model};
 
 /// A slope below this share of the size of its parts is 0: along a fold the control's own part is.
 const FLAT: f64 = 1e-7;
@@ -17,7 +17,8 @@ const FLAT: f64 = 1e-7;
 /// A yield is larger where it is so by more than this share.
 const LARGER: f64 = 1e-13;
 
-/// For every amount taken, and for all together where they are of one unit, the largest yield on the given stretches.
+/// For every amount taken of species to be kept, and for all of these together where they are of one unit, the largest yield
+/// on the given stretches.
 /// Those that no stretch has are left out.
 pub(super) fn best(
     ledger: &mut Ledger<'_>,
@@ -26,22 +27,24 @@ pub(super) fn best(
     stop: &dyn Fn() -> bool,
 ) -> Vec<BestYield> {
     let takings = &ledger.response.takings;
-    let amounts: Vec<usize> = (0..takings.len()).filter(|&place| takings[place].species.is_some()).collect();
+    // Of one that is to be removed nobody wants the largest catch.
+    let is_kept = |taking: &Taking| taking.species.is_some_and(|id| model.species[id.0].aim == Aim::Keep);
+    let amounts: Vec<usize> = (0..takings.len()).filter(|&place| is_kept(&takings[place])).collect();
     let mut wanted: Vec<(Option<usize>, Vec<usize>)> =
         amounts.iter().map(|&place| (Some(place), vec![place])).collect();
-    if amounts.len() > 1 && are_of_one_unit(model, takings) {
+    if amounts.len() > 1 && are_of_one_unit(model, amounts.iter().map(|&place| &takings[place])) {
         wanted.push((None, amounts));
     }
     wanted.iter().filter_map(|(taking, parts)| largest(ledger, keeping, *taking, parts, stop)).collect()
 }
 
 /// Whether all amounts taken may be added.
-fn are_of_one_unit(model: &Model, takings: &[Taking]) -> bool {
+fn are_of_one_unit<'t>(model: &Model, takings: impl Iterator<Item = &'t Taking>) -> bool {
     let unit = |taking: &Taking| {
         let species = &model.species[taking.species?.0];
         Some(species.unit.as_ref().map(|unit| unit.value.split_whitespace().collect::<String>()))
     };
-    let mut units = takings.iter().filter_map(unit);
+    let mut units = takings.filter_map(unit);
     let first = units.next();
     units.all(|unit| Some(unit) == first)
 }
@@ -99,10 +102,10 @@ fn is_better(new: &BestYield, old: &BestYield) -> bool {
 }
 
 /// The threshold nearest to a value of the control at which the state of a stretch is lost, and its distance as a share of
-/// that value.
+/// the larger of the two values.
 fn nearest(ledger: &Ledger<'_>, all: &[Stretch], stretch: &Stretch, at: f64) -> Option<(usize, f64)> {
     let lost = |side: usize| match stretch.edge(ledger.response, all, side) {
-        (StretchEnd::Lost(threshold), edge) => Some((threshold, (edge - at).abs() / at.abs())),
+        (StretchEnd::Lost(threshold), edge) => Some((threshold, (edge - at).abs() / edge.abs().max(at.abs()))),
         _ => None,
     };
     let found = [lost(0), lost(1)].into_iter().flatten().min_by(|a, b| a.1.total_cmp(&b.1));
