@@ -40,7 +40,7 @@ pub use advice::advise;
 pub use bands::band;
 pub use chart::chart;
 pub use front::front;
-pub use margins::margins;
+pub use margins::{bands, margins};
 pub use respond::respond;
 
 use nalgebra::Complex;
