@@ -2,7 +2,7 @@
 
 use restpoint::analysis::equilibria::{Budget, OneByOne, all};
 use restpoint::analysis::prepare::Prepared;
-use restpoint::analysis::response::{Control, advise, band, margins, respond};
+use restpoint::analysis::response::{Control, advise, band, bands, respond};
 use restpoint::model::ParameterId;
 use restpoint::model::load::{NoFiles, load};
 
@@ -64,7 +64,7 @@ fn bands_agree_with_pictures() {
         }
         let (graph, problem) = subject.problem();
         let list = all(graph, &problem, &BUDGET).list;
-        let found: Vec<_> = (0..list.len()).map(|which| margins(&mut subject, &list, which, &BUDGET).bands).collect();
+        let found: Vec<_> = (0..list.len()).map(|which| bands(&mut subject, &list, which, &BUDGET)).collect();
         let controls = (0..model.parameters.len()).filter(|&i| model.parameters[i].control);
         for i in controls {
             let Some(range) = &model.parameters[i].range else { continue };

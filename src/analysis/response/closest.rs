@@ -129,7 +129,7 @@ fn starts(k: usize, added: usize) -> Vec<Vec<f64>> {
         let mut source = Source::new(SEED);
         let mut draw = || -> Vec<f64> { (0..k).map(|_| source.between(-1.0, 1.0)).collect() };
         let drawn = if added == 0 { DRAWN } else { DRAWN / 2 };
-        starts.extend((0..drawn).filter_map(|_| unit(draw())));
+        starts.extend((0..drawn).filter_map(|_| unit(&draw())));
     }
     for start in &mut starts {
         start[k - added..].iter_mut().for_each(|part| *part = part.abs());
@@ -179,7 +179,7 @@ fn lower_beside(setting: &Setting<'_>, least: &Least) -> Option<(Vec<f64>, Hit)>
         for sign in [-1.0, 1.0] {
             let mut turned = least.direction.clone();
             turned[place] += sign * TURN;
-            let Some(turned) = unit(turned) else { continue };
+            let Some(turned) = unit(&turned) else { continue };
             let Some(hit) = surface.hit(&turned, &least.hit) else { continue };
             if hit.t < least.hit.t * (1.0 - SAME * TURN) {
                 return Some((turned, hit));
@@ -242,11 +242,13 @@ impl Step {
         let length = dot(&step, &step).sqrt();
         let longest = 0.5 / length;
         if longest < 1.0 {
-            step.iter_mut().for_each(|part| *part *= longest);
+            for part in &mut step {
+                *part *= longest;
+            }
         }
         for _ in 0..30 {
-            let moved = self.direction.iter().zip(&step).map(|(d, part)| d + part).collect();
-            if let Some(direction) = unit(moved)
+            let moved: Vec<f64> = self.direction.iter().zip(&step).map(|(d, part)| d + part).collect();
+            if let Some(direction) = unit(&moved)
                 && let Some(hit) = surface.hit(&direction, &self.hit)
                 && let Some(next) = Self::new(surface, direction, hit)
             {
@@ -256,7 +258,9 @@ impl Step {
                     return Some(next);
                 }
             }
-            step.iter_mut().for_each(|part| *part *= 0.4);
+            for part in &mut step {
+                *part *= 0.4;
+            }
         }
         None
     }
@@ -280,8 +284,8 @@ fn update(inverse: &mut [f64], before: &Step, after: &Step) {
     }
 }
 
-fn unit(vector: Vec<f64>) -> Option<Vec<f64>> {
-    let length = dot(&vector, &vector).sqrt();
+fn unit(vector: &[f64]) -> Option<Vec<f64>> {
+    let length = dot(vector, vector).sqrt();
     let unit: Vec<f64> = vector.iter().map(|part| part / length).collect();
     unit.iter().all(|part| part.is_finite()).then_some(unit)
 }

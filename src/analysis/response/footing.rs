@@ -251,7 +251,9 @@ impl<'f> Standing<'f> {
         tangent[n - 1] = 1.0;
         solve(&mut matrix, &mut tangent)?;
         let length = dot(&tangent, &tangent).sqrt();
-        tangent.iter_mut().for_each(|part| *part /= length);
+        for part in &mut tangent {
+            *part /= length;
+        }
         tangent.iter().all(|part| part.is_finite()).then_some(tangent)
     }
 

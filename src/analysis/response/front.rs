@@ -163,13 +163,15 @@ impl Grid {
     fn filled(terrain: &mut Terrain<'_>, seeds: &[Seed], budget: &Budget<'_>) -> Self {
         let mut grid = Self { nodes: vec![Vec::new(); GRID * GRID] };
         let last = (GRID - 1) as f64;
+        let off = |node: usize, share: f64| (node as f64 / last - share).abs();
         let mut open: Vec<(usize, Place)> = Vec::new();
         for (share, state) in seeds {
             let guess: Vec<f64> = terrain.standing.footing.face.moving.iter().map(|&i| state[i]).collect();
             let Some(start) = terrain.at(*share, &guess) else { continue };
-            let node = share.map(|share| (share.clamp(0.0, 1.0) * last).round());
-            let Some(place) = walked(terrain, start, node.map(|k| k / last)) else { continue };
-            open.push((node[1] as usize * GRID + node[0] as usize, place));
+            let nearest = |share: f64| (0..GRID).min_by(|&a, &b| off(a, share).total_cmp(&off(b, share))).unwrap_or(0);
+            let node = share.map(nearest);
+            let Some(place) = walked(terrain, start, node.map(|k| k as f64 / last)) else { continue };
+            open.push((node[1] * GRID + node[0], place));
         }
         while let Some((node, place)) = open.pop() {
             if (budget.stop)() {

@@ -72,20 +72,36 @@ impl Setting<'_> {
 /// range. Once the budget's `stop` says so the rest counts as not followed.
 pub fn margins(subject: &mut Subject<'_>, list: &[Equilibrium], which: usize, budget: &Budget<'_>) -> Margins {
     let stop = || (budget.stop)();
-    let Some(start) = list.get(which) else { return Margins::default() };
-    let movers = movers(subject);
+    let found = moved_alone(subject, list, which, &stop);
+    let (movers, bands): (Vec<Mover>, Vec<Band>) = found.into_iter().unzip();
+    let closest = list.get(which).and_then(|start| closest::closest(subject, start, &movers, &stop));
+    Margins { bands, closest: closest.map(|(edge, count)| (ClosestEdge { equilibrium: which, ..edge }, count)) }
+}
+
+/// The bands of [`margins`] alone, which take a small part of its time.
+pub fn bands(subject: &mut Subject<'_>, list: &[Equilibrium], which: usize, budget: &Budget<'_>) -> Vec<Band> {
+    let stop = || (budget.stop)();
+    moved_alone(subject, list, which, &stop).into_iter().map(|(_, band)| band).collect()
+}
+
+/// Every parameter with its band, the nearest loss first.
+fn moved_alone(
+    subject: &Subject<'_>,
+    list: &[Equilibrium],
+    which: usize,
+    stop: &dyn Fn() -> bool,
+) -> Vec<(Mover, Band)> {
+    let Some(start) = list.get(which) else { return Vec::new() };
     let mut bands: Vec<(Mover, Band)> = Vec::new();
-    for &mover in &movers {
+    for mover in movers(subject) {
         // Each with equations of its own: other parameters that are 0 then take their terms with them.
-        let Some(mut setting) = Setting::new(subject, start, &[mover], &stop) else { return Margins::default() };
+        let Some(mut setting) = Setting::new(subject, start, &[mover], stop) else { return Vec::new() };
         bands.push((mover, band(&mut setting, which)));
     }
     let distance =
         |(mover, band): &(Mover, Band)| band.margin().map_or(f64::INFINITY, |(distance, _)| distance / mover.width());
     bands.sort_by(|a, b| distance(a).total_cmp(&distance(b)));
-    let (movers, bands): (Vec<Mover>, Vec<Band>) = bands.into_iter().unzip();
-    let closest = closest::closest(subject, start, &movers, &stop);
-    Margins { bands, closest: closest.map(|(edge, count)| (ClosestEdge { equilibrium: which, ..edge }, count)) }
+    bands
 }
 
 impl<'s> Setting<'s> {

@@ -49,7 +49,7 @@ pub use bands::band;
 pub use chart::chart;
 pub use charted::{Chart, ChartCurve, ChartPoint, Region, RegionState};
 pub use front::front;
-pub use margins::margins;
+pub use margins::{bands, margins};
 pub use respond::respond;
 
 use nalgebra::Complex;

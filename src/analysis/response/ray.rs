@@ -67,7 +67,7 @@ struct Point {
     seen: Seen,
 }
 
-impl<'f> Ray<'_, 'f> {
+impl Ray<'_, '_> {
     /// Follows the state of those who move from t = 0 to the limit.
     pub(super) fn follow(&mut self, x: &[f64], limit: f64) -> Course {
         let stuck = |t: f64| Course::NotFollowed { t };

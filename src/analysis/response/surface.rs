@@ -111,7 +111,9 @@ impl<'s> Surface<'s> {
         rows.extend(frame.linear.iter().map(|linear| linear.row.clone()));
         for row in &mut rows {
             let most = row.iter().fold(0.0f64, |most, x| most.max(x.abs()));
-            row.iter_mut().for_each(|x| *x /= most);
+            for x in row {
+                *x /= most;
+            }
         }
         let own: Vec<usize> = (0..n).filter(|j| !(m..m + k).contains(j)).collect();
         let left = left_vector(&rows, &own)?;

@@ -33,11 +33,14 @@ pub(super) struct Watch {
     sides: Vec<[f64; 2]>,
 }
 
+/// Which absent species, or those who move, and their eigenvalues.
+type Group = (Option<Vec<usize>>, Vec<Complex<f64>>);
+
 /// What was seen at a point.
 #[derive(Clone, Debug, PartialEq)]
 pub(super) struct Seen {
     /// Eigenvalues, or multipliers, of those who move, and of each group of absent species that depend on each other.
-    groups: Vec<(Option<Vec<usize>>, Vec<Complex<f64>>)>,
+    groups: Vec<Group>,
     /// For each kink the difference of what it compares.
     kinks: Vec<f64>,
 }
