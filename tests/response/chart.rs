@@ -199,7 +199,7 @@ fn published_points_are_met() {
         has_point(&found, ThresholdKind::BogdanovTakens, at(1));
         has_point(&found, ThresholdKind::BogdanovTakens, at(2));
         // Trace 0, and the coefficient of the plane (Guckenheimer & Holmes 1983, eq. 3.4.11) 0, solved with 30 digits.
-        has_point(&found, ThresholdKind::GeneralisedHopf, [0.956_623_198_035_282_85, 0.000_950_448_247_753_249_93]);
+        has_point(&found, ThresholdKind::GeneralisedHopf, [0.956_623_198_035_282_8, 0.000_950_448_247_753_25]);
         assert_eq!(found.points.len(), 4, "{:?}", found.points);
         assert_eq!(found.curves.len(), 3, "a fold curve and a Hopf curve from each double eigenvalue");
     }

@@ -3,6 +3,7 @@
 #[path = "../common/mod.rs"]
 mod common;
 
+mod branches;
 mod chart;
 mod located;
 mod setting;

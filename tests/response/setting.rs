@@ -83,3 +83,18 @@ impl<'s> Bench<'s> {
         face.moving.iter().map(|&i| state[i]).chain(controls.iter().copied()).collect()
     }
 }
+
+/// Every model that comes with the program.
+pub(crate) fn shipped() -> Vec<(String, Model)> {
+    let folder = std::path::Path::new(env!("CARGO_MANIFEST_DIR")).join("scenarios");
+    let mut paths: Vec<_> = std::fs::read_dir(folder).unwrap().map(|entry| entry.unwrap().path()).collect();
+    paths.sort();
+    paths.retain(|path| path.extension().is_some_and(|extension| extension == "yaml"));
+    let model = |path: &std::path::PathBuf| match restpoint::shell::models::read(Some(path)) {
+        restpoint::shell::models::Reading::Model(original) => {
+            (path.file_stem().unwrap().to_string_lossy().into_owned(), original.model)
+        }
+        _ => panic!("{}", path.display()),
+    };
+    paths.iter().map(model).collect()
+}

@@ -14,18 +14,18 @@ use crate::setting::{Bench, parameter, subject};
 const NEAR: f64 = 1e-10;
 
 /// A published threshold of one parameter.
-struct Published<'c> {
+pub(crate) struct Published<'c> {
     case: &'c Case,
     entry: &'c Value,
-    kind: &'c str,
-    parameter: &'c str,
-    at: f64,
-    state: Vec<f64>,
+    pub(crate) kind: &'c str,
+    pub(crate) parameter: &'c str,
+    pub(crate) at: f64,
+    pub(crate) state: Vec<f64>,
 }
 
 /// Those that are thresholds of one control: cusps and Bogdanov–Takens points are of two, a change from node to spiral is
 /// none, and at C13's the equilibria are a continuum.
-fn published(case: &Case) -> Vec<Published<'_>> {
+pub(crate) fn published(case: &Case) -> Vec<Published<'_>> {
     let Some(list) = case.facts.get("thresholds") else { return Vec::new() };
     let of_one = |entry: &&Value| {
         let kind = entry["kind"].as_str().unwrap();
@@ -90,7 +90,7 @@ fn around(published: &Published<'_>, bench: &Bench<'_>, face: &Face, sign: &Sign
     }
 }
 
-fn kind(published: &Published<'_>) -> ThresholdKind {
+pub(crate) fn kind(published: &Published<'_>) -> ThresholdKind {
     match published.kind {
         "fold" | "fold-vertical" => ThresholdKind::Fold,
         "hopf" => ThresholdKind::Hopf,

@@ -115,17 +115,17 @@ impl<'t> Cover<'t> {
             match self.look_at(&part) {
                 Verdict::Empty => {}
                 Verdict::Curve(point) if self.is_known(picture, &point) => {}
-                Verdict::Curve(_) => self.split(&mut stack, part, GapReason::Unjoined, None),
+                Verdict::Curve(_) => self.split(&mut stack, &part, GapReason::Unjoined, None),
                 Verdict::Open { domain, along } => {
                     let reason = if domain.defined { GapReason::Meeting } else { GapReason::Undefined };
-                    self.split(&mut stack, part, reason, Some(along));
+                    self.split(&mut stack, &part, reason, Some(along));
                 }
             }
         }
     }
 
     /// Cuts a part in two, or gives it up.
-    fn split(&mut self, stack: &mut Vec<Part>, part: Part, reason: GapReason, along: Option<usize>) {
+    fn split(&mut self, stack: &mut Vec<Part>, part: &[Interval], reason: GapReason, along: Option<usize>) {
         let share = |j: usize| part[j].width() / self.whole[j].width();
         let widest = (0..part.len()).max_by(|&a, &b| share(a).total_cmp(&share(b)));
         let Some(widest) = widest.filter(|&j| share(j) > SMALLEST) else {
@@ -136,7 +136,7 @@ impl<'t> Cover<'t> {
         let j = along.filter(|&j| share(j) > 1e-2 * share(widest)).unwrap_or(widest);
         let middle = part[j].mid();
         for half in [Interval::new(part[j].lo(), middle), Interval::new(middle, part[j].hi())] {
-            let mut next = part.clone();
+            let mut next = part.to_vec();
             next[j] = half;
             stack.push(next);
         }

@@ -66,10 +66,19 @@ pub(super) struct Typed {
     pub(super) leading: Option<Complex<f64>>,
     /// How many of those who move repel; `None` where one of these eigenvalues is too near to the border to say.
     pub(super) unstable: Option<usize>,
+    /// Whether one of these is so near to the border that a small error may decide.
+    pub(super) is_near: bool,
     /// det(A + 1) of a map among those who move: it changes sign where a multiplier passes −1.
     pub(super) alternating: f64,
     /// Largest real part of the growth of those who are absent together.
     pub(super) together: f64,
+}
+
+impl Sample {
+    /// The control's value.
+    pub(super) fn control(&self) -> f64 {
+        self.at.last().copied().unwrap_or_default()
+    }
 }
 
 impl<'p> Curve<'p> {
@@ -95,6 +104,13 @@ impl<'p> Curve<'p> {
     /// Coordinates, the control included.
     pub(super) fn order(&self) -> usize {
         self.scale.len()
+    }
+
+    /// A direction in the units of the coordinates as a unit vector in scaled ones.
+    pub(super) fn unit(&self, direction: &[f64]) -> Vec<f64> {
+        let mut unit: Vec<f64> = direction.iter().zip(&self.scale).map(|(part, scale)| part / scale).collect();
+        normalise(&mut unit);
+        unit
     }
 
     /// Evaluates rows and slopes; whether all are defined and finite.
@@ -164,6 +180,10 @@ impl<'p> Curve<'p> {
         sample.direction.extend(self.solutions[1].iter().zip(&self.scale).map(|(x, scale)| x / length * scale));
         sample.orientation = orientation;
         self.look(sample);
+        if sample.typed.is_near && self.evaluate(&sample.at) {
+            // The slopes were those before the last correction, which near the border is not near enough.
+            self.look(sample);
+        }
     }
 
     /// Fills in what is watched and the type at a point that was evaluated last.
@@ -200,6 +220,14 @@ impl<'p> Curve<'p> {
     }
 }
 
+/// Brings a vector that is not 0 to length 1.
+pub(super) fn normalise(vector: &mut [f64]) {
+    let length = dot(vector, vector).sqrt();
+    for x in vector {
+        *x /= length;
+    }
+}
+
 /// Σ a_i b_i
 pub(super) fn dot(a: &[f64], b: &[f64]) -> f64 {
     a.iter().zip(b).map(|(a, b)| a * b).sum()
@@ -212,7 +240,9 @@ fn solve(a: &mut [f64], n: usize, out: &mut [Vec<f64>; 2]) -> Option<f64> {
     let mut sign = 1.0;
     for row in a.chunks_exact_mut(width) {
         let largest = row[..n].iter().fold(0.0f64, |most, x| most.max(x.abs()));
-        row.iter_mut().for_each(|x| *x /= largest);
+        for x in row {
+            *x /= largest;
+        }
     }
     for k in 0..n {
         let mut place = k;

@@ -42,9 +42,8 @@ pub(super) fn changes(piece: &Piece, sides: &[[f64; 2]], before: &Sample, after:
         out.push(Change::Crossing);
         reversals += 1;
     }
-    for i in 0..m {
+    for (i, &[lower, upper]) in sides.iter().enumerate() {
         let (x, y) = (before.at[i], after.at[i]);
-        let [lower, upper] = sides[i];
         let nothing = -ROUNDING * upper.abs();
         if (x < nothing) != (y < nothing) {
             out.push(Change::Zero(i));
@@ -97,7 +96,7 @@ pub(super) fn number(change: Change, piece: &Piece, sides: &[[f64; 2]], before: 
         Change::Zero(i) => Some(at.at[i]),
         Change::Side(i) => {
             let [lower, upper] = sides[i];
-            let near = if before.at[i] > upper || at.at[i] > (lower + upper) / 2.0 { upper } else { lower };
+            let near = if before.at[i] > upper || at.at[i] > f64::midpoint(lower, upper) { upper } else { lower };
             Some(at.at[i] - near)
         }
         Change::Growth(place) => Some(at.beside[place]),

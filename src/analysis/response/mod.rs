@@ -4,6 +4,11 @@
 //! unless something says that it is proved: branches are followed (Keller 1977), thresholds located as roots of a system
 //! that defines them (Kuznetsov 2004, ch. 10), and only the count of equilibria between stations may be proved. `equations`
 //! has a scenario's rows with controls as inputs; start there for anything that moves a parameter.
+//!
+//! [`respond()`] makes the picture of one control: `picture` keeps what was followed, `piece` has a face's equations between
+//! kinks, `curve` points of a branch, `walk` goes along it and `events` says what changed on a step, `switch` what that
+//! means and where else it leads, `locate` where exactly it is, `cover` proves that nothing is missing, `stations` searches
+//! along the range. [`chart()`] is for two controls.
 
 pub mod chart;
 mod cover;
@@ -16,8 +21,10 @@ mod picture;
 mod piece;
 mod registry;
 mod respond;
+mod stations;
 mod switch;
 mod types;
+mod undefined;
 mod walk;
 
 pub use chart::chart;

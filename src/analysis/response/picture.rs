@@ -3,27 +3,33 @@
 //! A branch is followed once: a start that lies on one that is known is dropped. A threshold that is come upon on several
 //! branches is one, and its arms are all of theirs.
 
+mod note;
+mod result;
+
 use std::collections::VecDeque;
 use std::rc::Rc;
 
-use nalgebra::Complex;
-
 use super::curve::{Curve, Sample};
 use super::equations::Equations;
+use super::events;
 use super::events::Change;
+use super::locate::Locator;
 use super::locate::describe::Describer;
-use super::locate::{self, Located, Locator, Sign};
 use super::piece::{Piece, Pieces};
-use super::walk::{End, Event, Ground, Node, Walk, distance};
-use super::{Arm, Branch, Control, Ending, Point, Response, Threshold, ThresholdKind};
-use crate::model::SpeciesId;
+use super::walk::{End, Ground, Node, Walk, distance};
+use super::{Control, Ending, Point, Threshold};
 
 /// Branches and starts that are followed at most.
 const MOST_BRANCHES: usize = 400;
+/// What lies between two meetings of one threshold is one place with it when it is this share of an abundance, and of the
+/// range, off.
+const ONE_PLACE: f64 = 1e-3;
+/// How far from a threshold a walk sets out, in scaled coordinates,
+const ASIDE: f64 = 1.37e-3;
+/// in which an abundance is measured by itself, or by this share of the box.
+const LEAST_SCALE: f64 = 1e-3;
 /// Pieces that one branch runs through at most, each way.
 const MOST_LEGS: usize = 60;
-/// Thresholds nearer to each other than these are one: share of the range, and of each abundance.
-const SAME: [f64; 2] = [1e-6, 1e-4];
 /// An abundance this share of the box below 0, or beyond its sides, is there by rounding.
 const ROUNDING: f64 = 1e-9;
 
@@ -104,9 +110,10 @@ impl<'e> Picture<'e> {
             return true;
         }
         let Some((piece, sample)) = self.set_out(start, &present) else { return false };
-        if start.across.is_some() && self.passes(&present, &self.whole(&piece, &sample.at), self.control_of(&sample)) {
+        if start.across.is_some() && self.passes(&present, &self.whole(&piece, &sample.at), sample.control()) {
             return true;
         }
+        let sample = self.aside(&piece, &sample).unwrap_or(sample);
         let (mut points, end) = self.go(piece.clone(), sample.clone(), Some(sample.clone()));
         let mut ends = [end, end];
         let mut all = Vec::new();
@@ -125,18 +132,69 @@ impl<'e> Picture<'e> {
         if end == Ending::Closed {
             all.push(first);
         }
+        self.gather(&mut all);
         let n = self.equations.species;
         let peaks = (0..n).map(|i| all.iter().fold(0.0f64, |most, point| most.max(point.state[i].abs()))).collect();
         self.branches.push(Followed { present, points: all, ends, peaks });
         true
     }
 
-    fn width(&self) -> f64 {
-        self.control.to - self.control.from
+    /// A point a little further on, where one lies on a threshold: what happens there is seen on the way back over it.
+    fn aside(&mut self, piece: &Piece, sample: &Sample) -> Option<Sample> {
+        if sample.typed.unstable.is_some() {
+            return None;
+        }
+        let values = self.values.clone();
+        let mut curve = self.curve(piece, &values, &sample.at);
+        let unit = curve.unit(&sample.direction);
+        [ASIDE, -ASIDE].into_iter().find_map(|step| {
+            let mut at: Vec<f64> =
+                sample.at.iter().zip(&unit).zip(&curve.scale).map(|((x, t), s)| x + step * t * s).collect();
+            let corrected = curve.correct(&mut at, &unit)?;
+            let mut beside = Sample { at, ..Sample::default() };
+            curve.describe(&mut beside, corrected.orientation);
+            let is_inside = (self.control.from..=self.control.to).contains(&beside.control());
+            let is_clear = beside.typed.unstable.is_some() && events::kinks(piece, &beside).next().is_none();
+            (is_inside && is_clear).then_some(beside)
+        })
     }
 
-    fn control_of(&self, sample: &Sample) -> f64 {
-        sample.at[sample.at.len() - 1]
+    /// A piece's curve, scaled for a point.
+    pub(super) fn curve<'p>(&self, piece: &'p Piece, values: &'p [f64], at: &[f64]) -> Curve<'p> {
+        let mut curve = Curve::new(piece, values, self.width(), self.is_map());
+        for (place, &i) in piece.moving.iter().enumerate() {
+            curve.scale[place] = at[place].abs().max(LEAST_SCALE * self.equations.sides[i][1].abs());
+        }
+        curve
+    }
+
+    /// Leaves of a threshold that was met several times in one place, as where branches cross, one point: what lies between
+    /// is too near to it to be told from it.
+    fn gather(&self, points: &mut Vec<Point>) {
+        let sides = &self.equations.sides;
+        let is_one = |a: &Point, b: &Point| {
+            let near = |i: usize| {
+                (a.state[i] - b.state[i]).abs() <= ONE_PLACE * a.state[i].abs().max(1e-3 * sides[i][1].abs())
+            };
+            (a.at - b.at).abs() <= ONE_PLACE * self.width() && (0..a.state.len()).all(near)
+        };
+        let mut kept: Vec<Point> = Vec::with_capacity(points.len());
+        for point in points.drain(..) {
+            let last = kept.iter().rposition(|known| known.threshold.is_some());
+            if let Some(last) = last
+                && point.threshold.is_some()
+                && kept[last].threshold == point.threshold
+                && kept[last..].iter().all(|between| is_one(between, &point))
+            {
+                kept.truncate(last);
+            }
+            kept.push(point);
+        }
+        *points = kept;
+    }
+
+    fn width(&self) -> f64 {
+        self.control.to - self.control.from
     }
 
     fn is_map(&self) -> bool {
@@ -165,10 +223,7 @@ impl<'e> Picture<'e> {
         let piece = self.pieces.at(self.equations, present, &beside, start.control)?;
         let at: Vec<f64> = piece.moving.iter().map(|&i| start.state[i]).chain([start.control]).collect();
         let values = self.values.clone();
-        let mut curve = Curve::new(&piece, &values, self.width(), self.is_map());
-        for (place, &i) in piece.moving.iter().enumerate() {
-            curve.scale[place] = start.state[i].abs().max(1e-3 * self.equations.sides[i][1].abs());
-        }
+        let mut curve = self.curve(&piece, &values, &at);
         let sample = match &start.across {
             None => {
                 let sample = curve.settled(&at)?;
@@ -249,7 +304,7 @@ impl<'e> Picture<'e> {
         let taking =
             |place: &Option<usize>| place.map(|place| sample.beside[place]).filter(|amount| amount.is_finite());
         Point {
-            at: self.control_of(sample),
+            at: sample.control(),
             kind: sample.typed.light.map(|light| light.kind),
             stable: sample.typed.light.and_then(|light| light.stable),
             leading: sample.typed.leading,
@@ -266,171 +321,6 @@ impl<'e> Picture<'e> {
             x >= side[0].min(0.0).max(-room) - room && x >= side[0] - room && x <= side[1] + room
         })
     }
-
-    /// Enters what happens at a point of a branch, and what is to be followed from there.
-    fn note(
-        &mut self,
-        piece: &Rc<Piece>,
-        sample: &Sample,
-        event: &Event,
-        beyond: Option<&(Rc<Piece>, Sample)>,
-    ) -> Option<usize> {
-        let mut state = self.whole(piece, &sample.at);
-        let meaning = super::switch::Meaning::of(self, piece, event, &state);
-        for &i in &meaning.vanish {
-            state[i] = 0.0;
-        }
-        if !self.is_feasible(&state) {
-            return None;
-        }
-        let found = self.threshold(piece, sample, event, beyond, &meaning, state);
-        let mut direction = vec![0.0; self.equations.species + 1];
-        piece.moving.iter().zip(&sample.direction).for_each(|(&i, &part)| direction[i] = part);
-        direction[self.equations.species] = sample.direction[piece.moving.len()];
-        for (present, is_across) in meaning.leads_to {
-            let across = is_across.then(|| direction.clone());
-            self.starts.push_back(Start { present, state: found.state.clone(), control: found.at, across });
-        }
-        Some(self.merged(found))
-    }
-
-    /// The threshold that an event is, by the system that defines it; where that has no root, as it was bracketed.
-    fn threshold(
-        &mut self,
-        piece: &Rc<Piece>,
-        sample: &Sample,
-        event: &Event,
-        beyond: Option<&(Rc<Piece>, Sample)>,
-        meaning: &super::switch::Meaning,
-        state: Vec<f64>,
-    ) -> Threshold {
-        if let Some(sign) = meaning.sign.clone()
-            && let Some((found, event)) = self.located(piece, sign, sample, event)
-        {
-            let event = locate::Event { face: &piece.face, sign: event, before: &found.1[0], after: &found.1[1] };
-            let mut threshold = self.describer.threshold(self.equations, &event, &found.0);
-            if meaning.kind == ThresholdKind::Pitchfork {
-                threshold.kind = meaning.kind;
-            }
-            threshold.species = meaning.species.map(SpeciesId).or(threshold.species);
-            return threshold;
-        }
-        Threshold {
-            kind: meaning.kind,
-            at: self.control_of(sample),
-            state,
-            eigenvalues: event.eigenvalues.clone(),
-            other_side: beyond.map(|(next, start)| self.eigenvalues(next, start)),
-            criticality: None,
-            species: meaning.species.map(SpeciesId),
-            arms: Vec::new(),
-            kink: None,
-            error: event.error,
-        }
-    }
-
-    /// An event's root, if it is where the event was.
-    fn located(
-        &mut self,
-        piece: &Rc<Piece>,
-        sign: Sign,
-        sample: &Sample,
-        event: &Event,
-    ) -> Option<((Located, [Vec<f64>; 2]), Sign)> {
-        let [before, after] = &event.bracket;
-        let asked = locate::Event { face: &piece.face, sign: sign.clone(), before, after };
-        let found = self.locator.locate(self.equations, &asked)?;
-        let width = self.width();
-        let is_here = (found.at - self.control_of(sample)).abs() <= SAME[0].max(1e-5) * width;
-        is_here.then(|| ((found, event.bracket.clone()), sign))
-    }
-
-    fn eigenvalues(&self, piece: &Piece, sample: &Sample) -> Vec<Complex<f64>> {
-        let values = self.values.clone();
-        let mut curve = Curve::new(piece, &values, self.width(), self.is_map());
-        if !curve.evaluate(&sample.at) {
-            return Vec::new();
-        }
-        curve.look(&mut sample.clone());
-        curve.eigenvalues().to_vec()
-    }
-
-    /// The place of a threshold among those known, itself new or met before.
-    fn merged(&mut self, found: Threshold) -> usize {
-        let width = self.width();
-        let sides = &self.equations.sides;
-        let is_same = |known: &Threshold| {
-            let near = |i: usize| {
-                let room = SAME[1] * known.state[i].abs().max(1e-3 * sides[i][1].abs());
-                (known.state[i] - found.state[i]).abs() <= room
-            };
-            (known.at - found.at).abs() <= SAME[0] * width && (0..found.state.len()).all(near)
-        };
-        let Some(place) = self.thresholds.iter().position(is_same) else {
-            self.thresholds.push(found);
-            return self.thresholds.len() - 1;
-        };
-        let known = &mut self.thresholds[place];
-        known.kind = together(known.kind, found.kind);
-        known.species = known.species.or(found.species);
-        place
-    }
-
-    /// The picture as a result.
-    pub(super) fn response(&mut self, equilibria: &[Vec<f64>]) -> Response {
-        let takings = self.equations.takings.clone();
-        let mut order: Vec<usize> = (0..self.branches.len()).collect();
-        let key = |b: &usize| {
-            let present = &self.branches[*b].present;
-            (present.iter().filter(|&&is| is).count(), present.iter().map(|&is| !is).collect::<Vec<_>>())
-        };
-        order.sort_by_key(key);
-        let mut by_value: Vec<usize> = (0..self.thresholds.len()).collect();
-        by_value.sort_by(|&a, &b| self.thresholds[a].at.total_cmp(&self.thresholds[b].at));
-        let mut place = vec![0; by_value.len()];
-        by_value.iter().enumerate().for_each(|(new, &old)| place[old] = new);
-        let mut thresholds: Vec<Threshold> = by_value.iter().map(|&old| self.thresholds[old].clone()).collect();
-        let mut branches = Vec::with_capacity(order.len());
-        for (number, &b) in order.iter().enumerate() {
-            let followed = &self.branches[b];
-            let mut points = followed.points.clone();
-            points.iter_mut().for_each(|point| point.threshold = point.threshold.map(|old| place[old]));
-            add_arms(&mut thresholds, number, &followed.present, &points);
-            let ends = followed.ends.map(|end| match end {
-                Ending::Threshold(old) => Ending::Threshold(place[old]),
-                other => other,
-            });
-            branches.push(Branch { present: followed.present.clone(), points, ends, equilibria: Vec::new() });
-        }
-        for (which, state) in equilibria.iter().enumerate() {
-            if let Some(b) = self.branch_through(state, self.control.present)
-                && let Some(number) = order.iter().position(|&old| old == b)
-            {
-                branches[number].equilibria.push(which);
-            }
-        }
-        Response {
-            control: self.control,
-            takings,
-            branches,
-            thresholds,
-            stations: Vec::new(),
-            gaps: Vec::new(),
-            undefined: Vec::new(),
-        }
-    }
-}
-
-/// The kind of a threshold that was met twice.
-fn together(known: ThresholdKind, found: ThresholdKind) -> ThresholdKind {
-    use ThresholdKind::{Exit, Fold, Pitchfork, Transcritical};
-    match (known, found) {
-        (a, b) if a == b => a,
-        (Pitchfork, _) | (_, Pitchfork) | (Transcritical, Fold) | (Fold, Transcritical) => Pitchfork,
-        (Transcritical, _) | (_, Transcritical) => Transcritical,
-        (Exit, other) => other,
-        (known, _) => known,
-    }
 }
 
 fn ending(end: End) -> Ending {
@@ -441,26 +331,5 @@ fn ending(end: End) -> Ending {
         End::Far => Ending::Far,
         End::Stopped => Ending::Stopped,
         End::Lost | End::Kink(_) => Ending::Lost,
-    }
-}
-
-/// What of a branch begins at its thresholds.
-fn add_arms(thresholds: &mut [Threshold], branch: usize, present: &[bool], points: &[Point]) {
-    for (place, point) in points.iter().enumerate() {
-        let Some(threshold) = point.threshold else { continue };
-        let before = place.checked_sub(1).and_then(|before| points.get(before));
-        for beside in [before, points.get(place + 1)].into_iter().flatten() {
-            let arm = Arm {
-                branch: Some(branch),
-                above: beside.at > point.at,
-                kind: beside.kind,
-                stable: beside.stable,
-                feasible: beside.feasible,
-                present: present.to_vec(),
-            };
-            if !thresholds[threshold].arms.contains(&arm) {
-                thresholds[threshold].arms.push(arm);
-            }
-        }
     }
 }

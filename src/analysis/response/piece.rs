@@ -70,7 +70,7 @@ impl Piece {
 #[derive(Debug, Default)]
 pub(super) struct Pieces {
     faces: HashMap<Vec<bool>, Option<Rc<Frame>>>,
-    pieces: HashMap<(Vec<bool>, Vec<bool>), Rc<Piece>>,
+    compiled: HashMap<(Vec<bool>, Vec<bool>), Rc<Piece>>,
     whole: Option<Rc<Tape>>,
 }
 
@@ -110,13 +110,13 @@ impl Pieces {
     pub(super) fn piece(&mut self, equations: &mut Equations, present: &[bool], sides: &[bool]) -> Option<Rc<Piece>> {
         let frame = self.frame(equations, present)?;
         let key = (frame.present.clone(), sides.to_vec());
-        if let Some(known) = self.pieces.get(&key) {
+        if let Some(known) = self.compiled.get(&key) {
             return Some(known.clone());
         }
         let all: Vec<usize> = (0..=equations.species).collect();
         let whole = self.whole.get_or_insert_with(|| Rc::new(Tape::over(&equations.graph, &equations.balance, &all)));
         let piece = Rc::new(compiled(equations, &frame, sides, whole.clone()));
-        self.pieces.insert(key, piece.clone());
+        self.compiled.insert(key, piece.clone());
         Some(piece)
     }
 
@@ -260,22 +260,16 @@ fn smoothed(graph: &mut Graph, nodes: &[NodeId], kinks: &[Kink], sides: &[bool])
     let mut new: HashMap<NodeId, NodeId> = HashMap::new();
     let extra: Vec<NodeId> = kinks.iter().flat_map(|kink| kink.operands).collect();
     for node in graph.reachable(&[nodes, &extra].concat()) {
-        let rebuilt = match kinks.iter().position(|kink| kink.node == node) {
-            Some(place) => {
-                let operand = kinks[place].operands[usize::from(!sides[place])];
-                // −u comes after |u| in the graph, so that it may not be there yet.
-                match new.get(&operand) {
-                    Some(&known) => known,
-                    None => {
-                        let inner = new[&kinks[place].operands[0]];
-                        graph.neg(inner)
-                    }
-                }
-            }
-            None => {
-                let operation = graph.operation(node);
-                graph.rebuild(operation.map(|operand| new[&operand]))
-            }
+        let rebuilt = if let Some(place) = kinks.iter().position(|kink| kink.node == node) {
+            let operand = kinks[place].operands[usize::from(!sides[place])];
+            // −u comes after |u| in the graph, so that it may not be there yet.
+            new.get(&operand).copied().unwrap_or_else(|| {
+                let inner = new[&kinks[place].operands[0]];
+                graph.neg(inner)
+            })
+        } else {
+            let operation = graph.operation(node);
+            graph.rebuild(operation.map(|operand| new[&operand]))
         };
         new.insert(node, rebuilt);
     }

@@ -74,7 +74,9 @@ fn foot(a: &[f64], b: &[f64], point: &[f64], scale: &[f64]) -> Option<(f64, Vec<
     if length == 0.0 {
         return None;
     }
-    direction.iter_mut().for_each(|x| *x /= length);
+    for x in &mut direction {
+        *x /= length;
+    }
     let to_point: Vec<f64> = point.iter().zip(a).zip(scale).map(|((p, a), s)| (p - a) / s).collect();
     let along: f64 = to_point.iter().zip(&direction).map(|(x, y)| x * y).sum();
     let square: f64 = to_point.iter().map(|x| x * x).sum();

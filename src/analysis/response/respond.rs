@@ -8,8 +8,8 @@ use std::collections::VecDeque;
 use super::equations::Equations;
 use super::locate::describe::Describer;
 use super::picture::{Picture, Start};
-use super::{Control, Response};
-use crate::analysis::equilibria::{Budget, Equilibrium, Problem, all};
+use super::{Control, Gap, GapReason, Response, stations};
+use crate::analysis::equilibria::{Budget, Equilibrium};
 use crate::analysis::subject::Subject;
 
 /// The picture over the range of a control, of which `list` is the scenario's at the control's present value.
@@ -25,25 +25,31 @@ pub fn respond(
     told: &mut dyn FnMut(&Response),
 ) -> Response {
     let mut equations = Equations::new(subject, &[control.parameter]);
-    let stop: &dyn Fn() -> bool = &|| (budget.stop)();
     let describer = Describer::new(subject, &[control.parameter]);
+    let stop: &dyn Fn() -> bool = &|| (budget.stop)();
     let mut picture = Picture::new(&mut equations, control, describer, stop);
-    if !(control.from < control.to) {
+    if control.from.partial_cmp(&control.to) != Some(std::cmp::Ordering::Less) {
         return picture.response(&[]);
     }
+    let symbols: Vec<String> = subject.model.species.iter().map(|species| species.symbol.clone()).collect();
+    let undefined = super::undefined::parts(picture.equations, control, &symbols);
     let is_inside = (control.from..=control.to).contains(&control.present);
+    let nearer = control.present.clamp(control.from, control.to);
     let states: Vec<Vec<f64>> = list.iter().map(|equilibrium| equilibrium.state.clone()).collect();
-    if is_inside {
-        picture.starts = starts(list, control.present);
+    let present: &[Vec<f64>] = if is_inside { &states } else { &[] };
+    picture.starts = if is_inside {
+        starts(list, nearer)
     } else {
-        let nearer = if control.present < control.from { control.from } else { control.to };
-        picture.starts = starts(&at(subject, control, nearer, budget), nearer);
-    }
+        stations::search(subject, control.parameter.0, nearer, budget)
+            .map_or_else(VecDeque::new, |f| starts(&f.0, nearer))
+    };
     picture.follow_all();
-    let present = if is_inside { &states[..] } else { &[] };
-    told(&picture.response(present));
-    let gaps = super::cover::cover(&mut picture, budget.boxes);
-    Response { gaps, ..picture.response(present) }
+    let mut so_far = Response { undefined, ..picture.response(present) };
+    so_far.gaps = vec![Gap { from: control.from, to: control.to, reason: GapReason::Budget }];
+    told(&so_far);
+    let mut gaps = super::cover::cover(&mut picture, budget.boxes);
+    let stations = stations::visit(&mut picture, subject, budget, &mut gaps);
+    Response { gaps, stations, undefined: so_far.undefined, ..picture.response(present) }
 }
 
 fn starts(list: &[Equilibrium], control: f64) -> VecDeque<Start> {
@@ -54,12 +60,4 @@ fn starts(list: &[Equilibrium], control: f64) -> VecDeque<Start> {
         across: None,
     };
     list.iter().map(start).collect()
-}
-
-/// The equilibria at another value of the control.
-fn at(subject: &mut Subject<'_>, control: &Control, value: f64, budget: &Budget<'_>) -> Vec<Equilibrium> {
-    let mut values = subject.plan.values.clone();
-    values[control.parameter.0] = value;
-    let problem = Problem { rows: &subject.balance, values: &values, sides: &subject.sides };
-    all(&mut subject.graph, &problem, budget).list
 }

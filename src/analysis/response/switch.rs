@@ -9,7 +9,7 @@
 use std::rc::Rc;
 
 use super::ThresholdKind;
-use super::curve::{Curve, Sample, dot};
+use super::curve::{Curve, Sample, dot, normalise};
 use super::events::{self, Change};
 use super::locate::Sign;
 use super::picture::Picture;
@@ -74,7 +74,9 @@ impl Meaning {
             for species in arrive {
                 let alone = species.len() == 1 && picture.equations.divided[species[0]].is_some();
                 let mut present = piece.present.clone();
-                species.iter().for_each(|&i| present[i] = true);
+                for i in species {
+                    present[i] = true;
+                }
                 meaning.leads_to.push((present, !alone));
             }
         } else if has(Change::Crossing) {
@@ -94,11 +96,11 @@ impl Meaning {
             };
             meaning.species = leaves.filter(|_| meaning.kind == ThresholdKind::Exit);
         }
-        meaning.sign = meaning.asked(piece, event, picture, state);
+        meaning.sign = Self::asked(piece, event, picture, state);
         meaning
     }
 
-    fn asked(&self, piece: &Piece, event: &Event, picture: &Picture<'_>, state: &[f64]) -> Option<Sign> {
+    fn asked(piece: &Piece, event: &Event, picture: &Picture<'_>, state: &[f64]) -> Option<Sign> {
         let sign = |change: &Change| match *change {
             Change::Turn => Sign::Turn,
             Change::Zero(i) => Sign::Abundance(piece.moving[i]),
@@ -136,14 +138,15 @@ pub(super) fn across(curve: &mut Curve<'_>, at: &[f64], known: &[f64]) -> Option
         return None;
     }
     let mut known: Vec<f64> = known.iter().zip(&curve.scale).map(|(part, scale)| part / scale).collect();
-    let length = dot(&known, &known).sqrt();
-    known.iter_mut().for_each(|part| *part /= length);
+    normalise(&mut known);
     let mut slopes: Vec<f64> =
         curve.slopes.iter().enumerate().map(|(place, slope)| slope * curve.scale[place % n]).collect();
     for row in slopes.chunks_exact_mut(n) {
         let largest = row.iter().fold(0.0f64, |most, x| most.max(x.abs()));
         if largest > 0.0 {
-            row.iter_mut().for_each(|x| *x /= largest);
+            for x in row {
+                *x /= largest;
+            }
         }
     }
     slopes.extend(std::iter::repeat_n(0.0, n));
@@ -153,8 +156,7 @@ pub(super) fn across(curve: &mut Curve<'_>, at: &[f64], known: &[f64]) -> Option
     let plane = [column(n.checked_sub(2)?), column(n - 1)];
     let shares = [dot(&plane[0], &known), dot(&plane[1], &known)];
     let mut aside: Vec<f64> = (0..n).map(|i| plane[0][i] * shares[1] - plane[1][i] * shares[0]).collect();
-    let length = dot(&aside, &aside).sqrt();
-    aside.iter_mut().for_each(|part| *part /= length);
+    normalise(&mut aside);
     for stride in BESIDE {
         for sign in [1.0, -1.0] {
             let mut point: Vec<f64> =
@@ -195,11 +197,7 @@ pub(super) fn over_kink(
 /// A point on a piece in the direction that leads to its own side of a kink, and another kink on whose wrong side that is.
 fn directed(picture: &mut Picture<'_>, next: &Piece, k: usize, last: &Sample) -> Option<(Sample, Option<usize>)> {
     let values = picture.equations.values.clone();
-    let width = picture.control.to - picture.control.from;
-    let mut curve = Curve::new(next, &values, width, picture.equations.step.is_some());
-    for (place, &i) in next.moving.iter().enumerate() {
-        curve.scale[place] = last.at[place].abs().max(1e-3 * picture.equations.sides[i][1].abs());
-    }
+    let mut curve = picture.curve(next, &values, &last.at);
     let mut start = curve.settled(&last.at)?;
     if distance(&start.at, &last.at, &curve.scale) > MEETS {
         return None;
@@ -209,7 +207,7 @@ fn directed(picture: &mut Picture<'_>, next: &Piece, k: usize, last: &Sample) ->
     for sign in [1.0, -1.0] {
         let mut probe: Vec<f64> =
             start.at.iter().zip(&start.direction).map(|(x, part)| x + sign * PROBE * part).collect();
-        let border = unit(&start.direction, &curve.scale);
+        let border = curve.unit(&start.direction);
         let Some(corrected) = curve.correct(&mut probe, &border) else { continue };
         let mut sample = Sample { at: probe, ..Sample::default() };
         curve.describe(&mut sample, corrected.orientation);
@@ -228,11 +226,4 @@ fn directed(picture: &mut Picture<'_>, next: &Piece, k: usize, last: &Sample) ->
         }
     }
     best
-}
-
-fn unit(direction: &[f64], scale: &[f64]) -> Vec<f64> {
-    let mut unit: Vec<f64> = direction.iter().zip(scale).map(|(part, scale)| part / scale).collect();
-    let length = dot(&unit, &unit).sqrt();
-    unit.iter_mut().for_each(|part| *part /= length);
-    unit
 }

@@ -15,6 +15,9 @@ use crate::num::eigen::{self, Unsolved};
 /// An eigenvalue this near to the border, as a share of the largest, is on neither side.
 const ROUNDING: f64 = 1e-9;
 
+/// One nearer than this share is looked at with the best slopes there are.
+const NEAR: f64 = 1e-4;
+
 /// Room for one Jacobian.
 pub(super) struct Types {
     /// Of those who move, row by row.
@@ -95,14 +98,20 @@ impl Types {
     fn of_moving(&self) -> Typed {
         let excess = |z: &Complex<f64>| if self.is_map { z.norm() - 1.0 } else { z.re };
         let largest = self.values.iter().fold(0.0f64, |most, z| most.max(z.norm()));
-        let is_clear = self.values.iter().all(|z| excess(z).abs() > ROUNDING * largest);
+        let nearest = self.values.iter().fold(f64::INFINITY, |least, z| least.min(excess(z).abs()));
+        let is_clear = nearest > ROUNDING * largest;
         let unstable = self.values.iter().filter(|z| excess(z) > 0.0).count();
         let alternating = if self.is_map {
             self.values.iter().fold(Complex::new(1.0, 0.0), |product, z| product * (z + 1.0)).re
         } else {
             1.0
         };
-        Typed { unstable: is_clear.then_some(unstable), alternating, ..Typed::default() }
+        Typed {
+            unstable: is_clear.then_some(unstable),
+            is_near: nearest <= NEAR * largest,
+            alternating,
+            ..Typed::default()
+        }
     }
 
     /// Adds the eigenvalues of the absent; the largest real part of those who grow only together.

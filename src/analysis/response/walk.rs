@@ -3,13 +3,18 @@
 //! A step is refused where Newton's method does not converge at once, the curve bends too much or turns twice unseen, or
 //! the orientation of the curve (the sign of its bordered determinant; Allgower & Georg 1990, ch. 2) turns over: only where
 //! that stays so down to the shortest steps do branches cross. Steps are short enough for a plot. What changed its sign on
-//! a step is located between its ends, and what is left to either side is looked at again.
+//! a step is located between its ends (`inspect`).
+
+mod inspect;
 
 use super::curve::{Curve, Sample, dot};
-use super::events::{self, Change};
-use crate::analysis::passage::locate::crossing;
+use super::events::Change;
+use inspect::{DEEPEST, TIGHT};
 use nalgebra::Complex;
 
+/// A step that ends on a threshold is shortened to this share, so often on one walk at most.
+const EVADED: f64 = 0.83;
+const EVASIONS: usize = 20;
 /// Steps of a walk.
 const MOST_STEPS: usize = 6000;
 /// Length of the first step: share of each abundance, and of the range.
@@ -18,6 +23,9 @@ const FIRST_STEP: f64 = 0.01;
 const LONGEST_STEP: f64 = 0.2;
 /// Share of the range, and of the largest abundance so far, that no step exceeds: what a plot can show.
 const SHOWN: [f64; 2] = [0.009, 0.03];
+/// The same for communities of more than [`LARGE`] who move, of which one point takes long.
+const SHOWN_LARGE: [f64; 2] = [0.02, 0.06];
+const LARGE: usize = 8;
 /// A step that would have to be shorter meets something that no step gets over.
 const SHORTEST_STEP: f64 = 1e-7;
 /// At steps shorter than this branches that seem to cross do.
@@ -29,14 +37,8 @@ const OFF: [f64; 2] = [0.03, 0.2];
 /// Abundances are scaled by themselves, or by this share of the largest that they had on the way.
 const LEAST_SCALE: f64 = 0.05;
 /// A branch is left where an abundance is this share of the largest so far below 0, or this many times the box's side above.
-const BELOW: f64 = 0.3;
+const BELOW: f64 = 1.0;
 const ABOVE: f64 = 2.0;
-/// Half the length around an event within which all that changes belongs to it.
-const TIGHT: f64 = 2e-6;
-/// Events within events.
-const DEEPEST: usize = 12;
-/// Halvings for an event that is only counted.
-const HALVINGS: usize = 40;
 
 /// A point of a walk.
 #[derive(Clone, Debug)]
@@ -99,6 +101,8 @@ pub(super) struct Walk<'w, 'p> {
     /// Where the walk of the whole branch began, if it may come back there.
     home: Option<Sample>,
     travelled: f64,
+    /// Steps that were shortened in order not to end on a threshold.
+    evasions: usize,
 }
 
 impl<'w, 'p> Walk<'w, 'p> {
@@ -118,6 +122,7 @@ impl<'w, 'p> Walk<'w, 'p> {
             nodes: Vec::new(),
             home,
             travelled: 0.0,
+            evasions: 0,
         };
         walk.rescale();
         walk
@@ -136,6 +141,11 @@ impl<'w, 'p> Walk<'w, 'p> {
             }
             let tried = self.step;
             let end = match self.attempt(tried) {
+                Ok(false) if self.lands_on_the_border() => {
+                    self.evasions += 1;
+                    self.step = EVADED * tried.min(self.most_shown());
+                    None
+                }
                 Ok(has_landed) => self.take(has_landed),
                 Err(Refusal::Crossing) if tried <= CROSSES => self.take(false),
                 Err(_) => {
@@ -148,6 +158,13 @@ impl<'w, 'p> Walk<'w, 'p> {
             }
         }
         End::Lost
+    }
+
+    /// Whether a step ends where eigenvalues are neither here nor there, though they were clear before: what happens there
+    /// is seen from points on either side. Where they stay so there is nothing to evade.
+    fn lands_on_the_border(&self) -> bool {
+        let [here, next] = [&self.here, &self.next].map(|sample| sample.typed.unstable);
+        here.is_some() && next.is_none() && self.evasions < EVASIONS
     }
 
     fn m(&self) -> usize {
@@ -215,8 +232,9 @@ impl<'w, 'p> Walk<'w, 'p> {
     /// The longest step that a plot shows as a smooth line.
     fn most_shown(&self) -> f64 {
         let m = self.m();
-        let along = |i: usize| SHOWN[1] * self.peaks[i] / (self.border[i].abs() * self.curve.scale[i]).max(1e-300);
-        (0..m).map(along).fold(SHOWN[0] / self.border[m].abs().max(1e-300), f64::min).min(LONGEST_STEP)
+        let shown = if m > LARGE { SHOWN_LARGE } else { SHOWN };
+        let along = |i: usize| shown[1] * self.peaks[i] / (self.border[i].abs() * self.curve.scale[i]).max(1e-300);
+        (0..m).map(along).fold(shown[0] / self.border[m].abs().max(1e-300), f64::min).min(LONGEST_STEP)
     }
 
     fn cosine(&self, next: &Sample) -> f64 {
@@ -321,153 +339,11 @@ impl<'w, 'p> Walk<'w, 'p> {
             point.is_some_and(|point| distance(&point.at, &home, &self.curve.scale) < 1e-5)
         }
     }
-
-    /// The point of the branch at a share of the way from one point to another.
-    fn between(&mut self, before: &Sample, after: &Sample, share: f64) -> Option<Sample> {
-        let parts = after.at.iter().zip(&before.at).zip(&self.curve.scale);
-        let mut border: Vec<f64> = parts.map(|((b, a), s)| (b - a) / s).collect();
-        let length = dot(&border, &border).sqrt();
-        border.iter_mut().for_each(|part| *part /= length);
-        let at = after.at.iter().zip(&before.at).map(|(b, a)| a + share * (b - a)).collect();
-        let mut sample = Sample { at, ..Sample::default() };
-        let corrected = self.curve.correct(&mut sample.at, &border)?;
-        self.curve.describe(&mut sample, corrected.orientation);
-        Some(sample)
-    }
-
-    /// Everything that happens between two points, added to the walk.
-    fn inspect(&mut self, before: &Sample, after: &Sample, depth: usize) {
-        let mut found = Vec::new();
-        events::changes(self.curve.piece, self.ground.sides, before, after, &mut found);
-        let Some(&change) = found.first() else { return };
-        let length = distance(&before.at, &after.at, &self.curve.scale);
-        let is_tight = length <= 4.0 * TIGHT || depth == 0;
-        let (share, point) = if is_tight { (0.5, None) } else { self.located(change, before, after) };
-        let point = point.or_else(|| self.between(before, after, share));
-        let half = (TIGHT / length).min(0.5);
-        let mut sides = [None, None];
-        if !is_tight {
-            if share > half {
-                sides[0] = self.between(before, after, share - half);
-            }
-            if share < 1.0 - half {
-                sides[1] = self.between(before, after, share + half);
-            }
-        }
-        let mut point = point.unwrap_or_else(|| straight(before, after, share));
-        let [left, right] = sides;
-        let mut together = Vec::new();
-        let ends = [left.as_ref().unwrap_or(before), right.as_ref().unwrap_or(after)];
-        events::changes(self.curve.piece, self.ground.sides, ends[0], ends[1], &mut together);
-        if !together.contains(&change) {
-            together.push(change);
-        }
-        let error = (ends[1].at[self.m()] - ends[0].at[self.m()]).abs();
-        let bracket = ends.map(|end| end.at.clone());
-        if let Some(left) = &left {
-            self.inspect(before, left, depth - 1);
-        }
-        self.part_from_last(&point);
-        let eigenvalues = self.eigenvalues_at(&mut point);
-        self.nodes.push(Node { sample: point, event: Some(Event { changes: together, eigenvalues, error, bracket }) });
-        if let Some(right) = &right {
-            self.inspect(right, after, depth - 1);
-        }
-    }
-
-    /// Between two events there is a point, to tell what the branch is like there.
-    fn part_from_last(&mut self, point: &Sample) {
-        let last = self.nodes.last().filter(|node| node.event.is_some()).map(|node| node.sample.clone());
-        if let Some(middle) = last.and_then(|last| self.between(&last, point, 0.5)) {
-            self.nodes.push(Node { sample: middle, event: None });
-        }
-    }
-
-    fn eigenvalues_at(&mut self, point: &mut Sample) -> Vec<Complex<f64>> {
-        if !self.curve.evaluate(&point.at) {
-            return Vec::new();
-        }
-        self.curve.look(point);
-        self.curve.eigenvalues().to_vec()
-    }
-
-    /// The share of the way at which a change happens, and the point there.
-    fn located(&mut self, change: Change, before: &Sample, after: &Sample) -> (f64, Option<Sample>) {
-        let (piece, sides) = (self.curve.piece, self.ground.sides);
-        let number = |at: &Sample| events::number(change, piece, sides, before, at);
-        if let Some(first) = number(before) {
-            let mut found = None;
-            let mut at = |share: f64| {
-                let sample = if share == 0.0 { before.clone() } else { self.between(before, after, share)? };
-                let value = number(&sample);
-                found = Some(sample);
-                value
-            };
-            if let Some(share) = crossing(&mut at, first, 1.0) {
-                return (share, found);
-            }
-            let second = number(after).unwrap_or(first);
-            let share = if first == second { 0.5 } else { first / (first - second) };
-            return (share.clamp(0.0, 1.0), None);
-        }
-        let (mut low, mut high) = (0.0, 1.0);
-        for _ in 0..HALVINGS {
-            let middle = (low + high) / 2.0;
-            match self.between(before, after, middle) {
-                Some(sample) if !events::has_happened(change, before, &sample) => low = middle,
-                Some(_) => high = middle,
-                // Where branches cross nothing can be corrected.
-                None => break,
-            }
-        }
-        ((low + high) / 2.0, None)
-    }
-
-    fn is_over_a_kink(&self, next: &Sample) -> bool {
-        !self.curve.piece.kinks.is_empty() && events::kinks(self.curve.piece, next).next().is_some()
-    }
-
-    /// Walks up to the first kink between two points.
-    fn stop_at_kink(&mut self, here: &Sample, next: &Sample) -> Option<End> {
-        let mut first: Option<(f64, usize, Option<Sample>)> = None;
-        for k in events::kinks(self.curve.piece, next) {
-            let place = self.curve.piece.differences + k;
-            let was = here.beside[place];
-            let is_beyond_already = (was < 0.0) == self.curve.piece.sides[k] && was != 0.0;
-            let (share, point) = if is_beyond_already || was == 0.0 {
-                (0.0, Some(here.clone()))
-            } else {
-                self.located(Change::Kink(k), here, next)
-            };
-            if first.as_ref().is_none_or(|(known, ..)| share < *known) {
-                first = Some((share, k, point));
-            }
-        }
-        let (share, k, point) = first?;
-        let point = point.or_else(|| self.between(here, next, share)).unwrap_or_else(|| straight(here, next, share));
-        if share > 0.0 {
-            self.inspect(here, &point, DEEPEST);
-        }
-        let mut point = point;
-        self.part_from_last(&point);
-        let eigenvalues = self.eigenvalues_at(&mut point);
-        let error = 1e-12 * self.curve.scale[self.m()];
-        let bracket = [here.at.clone(), next.at.clone()];
-        let event = Event { changes: vec![Change::Kink(k)], eigenvalues, error, bracket };
-        self.nodes.push(Node { sample: point, event: Some(event) });
-        Some(End::Kink(k))
-    }
 }
 
 /// Distance in scaled coordinates.
 pub(super) fn distance(a: &[f64], b: &[f64], scale: &[f64]) -> f64 {
     a.iter().zip(b).zip(scale).map(|((a, b), s)| ((a - b) / s) * ((a - b) / s)).sum::<f64>().sqrt()
-}
-
-/// The point of the straight line between two, where nothing better is known.
-fn straight(before: &Sample, after: &Sample, share: f64) -> Sample {
-    let at = before.at.iter().zip(&after.at).map(|(a, b)| a + share * (b - a)).collect();
-    Sample { at, ..before.clone() }
 }
 
 /// Longer where corrections were small, shorter where they were large: a correction grows with the square of the step.
