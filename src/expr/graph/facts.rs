@@ -79,6 +79,7 @@ impl Signs {
 
 /// What is known of one node.
 #[derive(Clone, Copy, Debug, PartialEq)]
+#[expect(clippy::struct_excessive_bools, reason = "facts that hold or not, each by itself")]
 pub struct Facts {
     /// Its values lie in here, wherever it is defined.
     pub range: Interval,
