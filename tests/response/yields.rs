@@ -52,7 +52,7 @@ fn check(id: &str, control: &str, range: [f64; 2], names: &[&str], pieces: Vec<P
         match best.nearest {
             Some((threshold, share)) => {
                 let edge = response.thresholds[threshold].at;
-                assert!(is_close(share, (edge - best.at).abs() / best.at.abs()), "{id}: {best:?}");
+                assert!(is_close(share, (edge - best.at).abs() / edge.abs().max(best.at.abs())), "{id}: {best:?}");
             }
             None => assert!(response.thresholds.is_empty(), "{id}: {best:?}"),
         }

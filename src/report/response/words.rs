@@ -41,7 +41,7 @@ pub fn gap(reason: GapReason) -> &'static str {
         GapReason::Unresolved => "the search left something undecided there",
         GapReason::Unjoined => "a state was found there that could not be joined to a branch",
         GapReason::Undefined => "the model has no value there",
-        GapReason::Budget => "the time was up",
+        GapReason::Budget => "the effort allowed for the proof was spent",
     }
 }
 
@@ -187,7 +187,7 @@ mod tests {
         let check = |values: &[f64], expected: &[&str]| assert_eq!(told_apart(values), expected);
         check(&[], &[]);
         check(&[0.0, 1.83], &["0", "1.830"]);
-        check(&[1.830_01, 1.830_11], &["1.83001", "1.83011"]);
+        check(&[1.830_01, 1.830_11], &["1.8300", "1.8301"]);
         check(&[1.0, 2.000_01, 2.000_02, 3.0], &["1.000", "2.00001", "2.00002", "3.000"]);
         check(&[1e-9, 1.000_02e-9], &["1.00000e-9", "1.00002e-9"]);
         check(&[5.0, 5.0], &["5.000", "5.000"]);
