@@ -2,10 +2,9 @@
 
 use crate::analysis::equilibria::Budget;
 use crate::analysis::prepare::Prepared;
-use crate::analysis::response::Chart;
 use crate::diag::cleanse::cleanse;
 use crate::model::{Original, ParameterId};
-use crate::report::response::chart::{self, Charts};
+use crate::report::response::chart::{self, Charted, Charts};
 use crate::report::response::{Along, Chosen, FIELDS, Field, Responses, UnknownField, guide, written};
 use crate::report::table::{Limits, Page, Scene, Style, Table};
 use crate::shell::models::{Reading, read};
@@ -115,7 +114,7 @@ impl Run<'_> {
     fn two(self, both: [(ParameterId, [f64; 2]); 2]) -> Outcome {
         self.solved(
             |solver, scene, budget| charted(solver.model, solver.prepared, scene, both, budget),
-            |table, charts: &[Option<Chart>]| {
+            |table, charts: &[Option<Charted>]| {
                 let (controls, ranges) = (both.map(|(id, _)| id), both.map(|(_, range)| range));
                 let charts = Charts { table, controls, ranges, chosen: self.chosen, charts };
                 let result = chart::written(&charts, self.options.format.into(), self.page());

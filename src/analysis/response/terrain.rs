@@ -21,6 +21,18 @@ pub(super) struct Place {
     moves: [Vec<f64>; 2],
 }
 
+impl Place {
+    /// Both yields together.
+    pub(super) fn total(&self) -> f64 {
+        self.yields[0] + self.yields[1]
+    }
+
+    /// Slope of both together by a share.
+    pub(super) fn total_slope(&self, control: usize) -> f64 {
+        self.slopes[0][control] + self.slopes[1][control]
+    }
+}
+
 /// What the two yields stand on.
 pub(super) struct Terrain<'f> {
     pub(super) standing: Standing<'f>,

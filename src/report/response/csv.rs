@@ -73,7 +73,8 @@ pub(super) fn state_name(table: &super::Table<'_>, species: usize) -> String {
     format!("state {}{unit}", species.symbol)
 }
 
-fn taking_name(table: &super::Table<'_>, one: &Taking) -> String {
+/// The field of what a harvest gives.
+pub(super) fn taking_name(table: &super::Table<'_>, one: &Taking) -> String {
     if one.species.is_none() {
         return taking(table.model, one).replacen("value of ", "value ", 1);
     }
