@@ -37,13 +37,14 @@ pub(super) fn response(asked: &Response, options: &Options, screen: Screen) -> O
         Ok(choice) => choice,
         Err(reason) => return Outcome::only(format!("error: {}\n", cleanse(&reason)), Exit::Usage),
     };
-    let prepared = match Prepared::new(model, &choice.set) {
+    let ranges = ranges(model, &choice);
+    let prepared = match Prepared::over(model, &choice.set, &ranges) {
         Ok(prepared) => prepared,
         Err(found) => return wrong(&found, &model.sources, options, screen.color_remarks),
     };
     let run =
         Run { asked, options, screen, original: &original, choice: &choice, prepared: &prepared, chosen: &chosen };
-    match ranges(model, &choice)[..] {
+    match ranges[..] {
         [one] => run.one(one),
         [across, upwards] => run.two([across, upwards]),
         _ => Outcome::only(String::new(), Exit::Usage),
