@@ -4,8 +4,8 @@ use nalgebra::Complex;
 use restpoint::analysis::linearise::Kind;
 use restpoint::analysis::response::{
     Advice, Arm, Band, BestYield, Branch, Chart, ChartCurve, ChartPoint, ClosestEdge, Control, Criticality, Edge,
-    Ending, Front, FrontPoint, Gap, GapReason, Margins, NoFront, OpenAccess, Point, Region, RegionState, Response,
-    Station, Taking, Threshold, ThresholdKind, Total,
+    Ending, Front, FrontPoint, Gap, GapReason, Margins, OpenAccess, Point, Region, RegionState, Response, Station,
+    Taking, Threshold, ThresholdKind, Total,
 };
 use restpoint::model::{Model, ParameterId, SpeciesId};
 use restpoint::report::response::chart::{self, Charted, Charts};
@@ -203,11 +203,9 @@ pub(crate) fn front() -> Front {
     }
 }
 
-/// Uses the charts of a model's three scenarios, of which the second has no front and the last is not there.
+/// Uses the charts of a model's three scenarios, of which the last two are not there.
 pub(crate) fn with_charts_of<T>(model: &Model, use_it: impl Fn(&Charts<'_>) -> T) -> T {
-    let none = Err(NoFront::Harvests(1));
-    let charts =
-        [Some(Charted { chart: chart(), front: Ok(front()) }), Some(Charted { chart: chart(), front: none }), None];
+    let charts = [Some(Charted { chart: chart(), front: Ok(front()) }), None, None];
     let chosen = Chosen::all(&chart::FIELDS);
     let (controls, ranges) = ([CONTROL, ParameterId(0)], [[0.0, 2.0], [0.0, 4.0]]);
     with_table_of(model, None, |table| use_it(&Charts { table, controls, ranges, chosen: &chosen, charts: &charts }))
