@@ -11,7 +11,7 @@ use restpoint::model::{Model, ParameterId, SpeciesId};
 use restpoint::report::response::chart::{self, Charted, Charts};
 use restpoint::report::response::{Along, Chosen, FIELDS, Responses};
 
-use crate::table_support::{model, with_table_of};
+use crate::table_support::with_table_of;
 
 /// The parameter that is varied: E of the table's model.
 pub(crate) const CONTROL: ParameterId = ParameterId(1);
@@ -158,11 +158,6 @@ pub(crate) fn with_responses_of<T>(model: &Model, use_it: impl Fn(&Responses<'_>
     with_table_of(model, None, |table| {
         use_it(&Responses { table, control: CONTROL, range: [0.0, 3.0], chosen: &chosen, along: &along })
     })
-}
-
-/// The same of the model of the table.
-pub(crate) fn with_responses<T>(use_it: impl Fn(&Responses<'_>) -> T) -> T {
-    with_responses_of(&model(), use_it)
 }
 
 /// A chart of E and r with a cusp: three states between two folds, one elsewhere.
