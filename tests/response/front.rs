@@ -107,6 +107,18 @@ fn the_largest_total_of_krill_and_whales() {
     assert_eq!(of(&text("kg"), controls).unwrap().total, Total::OfDifferentUnits);
 }
 
+/// A parameter that nothing hangs on stays where it is.
+#[test]
+fn what_changes_nothing_is_left_alone() {
+    let text = "title: t\ntime: yr\nspecies: {x: {upper: 300}, y: {upper: 300}}\nparameters: {E: 0.1, F: 0.1, z: 0.3}\n\
+        change: {x: x*(1 - x/100), y: 0.5*y*(1 - y/200)}\nharvest: {a: {takes: {x: E*x}}, b: {takes: {y: 0.1*y}}}\n";
+    let found = of(text, [("E", [0.0, 0.9]), ("z", [0.0, 0.4])]).unwrap();
+    let Total::At(point) = &found.total else { panic!("{:?}", found.total) };
+    assert!((point.at[0] - 0.5).abs() <= 1e-8 && point.at[1] == 0.3, "{point:?}");
+    assert!((point.yields[0] - 25.0).abs() <= 1e-8 && (point.yields[1] - 16.0).abs() <= 1e-8, "{point:?}");
+    assert!(!found.points.is_empty() && found.points.iter().all(|point| point.at[1] == 0.3), "{found:?}");
+}
+
 /// Who takes from what decides whether there is a front.
 #[test]
 fn what_has_no_front_says_why() {

@@ -22,6 +22,8 @@ const GRID: usize = 25;
 const POINTS: usize = 25;
 /// Shares of the ranges at which states are searched for, beside those of the present.
 const SEARCHED: [f64; 3] = [1.0 / 6.0, 0.5, 5.0 / 6.0];
+/// A control that changes yields and states by no more than this share over its range changes nothing.
+const FLAT: f64 = 1e-9;
 /// A yield is better by more than this share.
 const BETTER: f64 = 1e-9;
 
@@ -53,8 +55,13 @@ pub fn front(
         let is_kept = |place: &Place| has_kept(subject.model, &footing.state(&place.x));
         search.add(&mut terrain, &grid, &is_kept);
     }
+    let steepest = search.steepest;
     let (points, total) = search.ended(&|place| FrontPoint {
-        at: [0, 1].map(|j| ranges[j][0] + place.share[j] * ranges[j][1]),
+        at: [0, 1].map(|j| match steepest[j] > FLAT {
+            true => ranges[j][0] + place.share[j] * ranges[j][1],
+            // Any value would do.
+            false => controls[j].present,
+        }),
         yields: place.yields,
         state: place.state.clone(),
     });
@@ -72,6 +79,8 @@ struct Search {
     totals: Vec<Spot>,
     /// The largest total at a node of any grid.
     most: f64,
+    /// What either control changes at most, by a share of its range, relative.
+    steepest: [f64; 2],
 }
 
 /// A place without its face.
@@ -85,6 +94,8 @@ struct Spot {
 
 impl Search {
     fn add(&mut self, terrain: &mut Terrain<'_>, grid: &Grid, is_kept: &dyn Fn(&Place) -> bool) {
+        let steepest = |j: usize| grid.places().map(|place| place.steepness(j)).fold(self.steepest[j], f64::max);
+        self.steepest = [steepest(0), steepest(1)];
         let mut found = along(terrain, grid);
         let mut totals = Vec::new();
         if let Some(best) = grid.places().filter(|_| self.adds).max_by(|a, b| a.total().total_cmp(&b.total())) {
