@@ -57,10 +57,9 @@ pub fn front(
     }
     let steepest = search.steepest;
     let (points, total) = search.ended(&|place| FrontPoint {
-        at: [0, 1].map(|j| match steepest[j] > FLAT {
-            true => ranges[j][0] + place.share[j] * ranges[j][1],
-            // Any value would do.
-            false => controls[j].present,
+        // Where a control changes nothing any value would do.
+        at: [0, 1].map(|j| {
+            if steepest[j] > FLAT { ranges[j][0] + place.share[j] * ranges[j][1] } else { controls[j].present }
         }),
         yields: place.yields,
         state: place.state.clone(),
