@@ -26,8 +26,21 @@ impl Prepared {
     /// # Errors
     /// Where the model has no search box, or no scenario could be assembled; each problem with its place.
     pub fn new(model: &Model, set: &[(ParameterId, f64)]) -> Result<Self, Vec<Diagnostic>> {
+        Self::over(model, set, &[])
+    }
+
+    /// The same, sound as well where parameters are varied over these ranges: rules that simplify formulas hold for the
+    /// values that the model gives a parameter, and a range that is asked for may go beyond.
+    ///
+    /// # Errors
+    /// As for [`Prepared::new`].
+    pub fn over(
+        model: &Model,
+        set: &[(ParameterId, f64)],
+        ranges: &[(ParameterId, [f64; 2])],
+    ) -> Result<Self, Vec<Diagnostic>> {
         // The box is the same whatever scenarios are asked for, so all that can be are assembled.
-        if let Ok(system) = System::new(model, set) {
+        if let Ok(system) = System::over(model, set, ranges) {
             return Self::with_box(model, system, (0..model.scenarios.len()).map(Ok).collect());
         }
         let mut sound = Vec::new();
@@ -43,7 +56,7 @@ impl Prepared {
             });
         }
         let model = &Model { scenarios: sound, ..model.clone() };
-        Self::with_box(model, System::new(model, set)?, plans)
+        Self::with_box(model, System::over(model, set, ranges)?, plans)
     }
 
     fn with_box(model: &Model, mut system: System, plans: Vec<Plan>) -> Result<Self, Vec<Diagnostic>> {

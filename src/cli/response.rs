@@ -2,10 +2,9 @@
 
 use crate::analysis::equilibria::Budget;
 use crate::analysis::prepare::Prepared;
-use crate::analysis::response::Chart;
 use crate::diag::cleanse::cleanse;
 use crate::model::{Original, ParameterId};
-use crate::report::response::chart::{self, Charts};
+use crate::report::response::chart::{self, Charted, Charts};
 use crate::report::response::{Along, Chosen, FIELDS, Field, Responses, UnknownField, guide, written};
 use crate::report::table::{Limits, Page, Scene, Style, Table};
 use crate::shell::models::{Reading, read};
@@ -38,13 +37,14 @@ pub(super) fn response(asked: &Response, options: &Options, screen: Screen) -> O
         Ok(choice) => choice,
         Err(reason) => return Outcome::only(format!("error: {}\n", cleanse(&reason)), Exit::Usage),
     };
-    let prepared = match Prepared::new(model, &choice.set) {
+    let ranges = ranges(model, &choice);
+    let prepared = match Prepared::over(model, &choice.set, &ranges) {
         Ok(prepared) => prepared,
         Err(found) => return wrong(&found, &model.sources, options, screen.color_remarks),
     };
     let run =
         Run { asked, options, screen, original: &original, choice: &choice, prepared: &prepared, chosen: &chosen };
-    match ranges(model, &choice)[..] {
+    match ranges[..] {
         [one] => run.one(one),
         [across, upwards] => run.two([across, upwards]),
         _ => Outcome::only(String::new(), Exit::Usage),
@@ -115,7 +115,7 @@ impl Run<'_> {
     fn two(self, both: [(ParameterId, [f64; 2]); 2]) -> Outcome {
         self.solved(
             |solver, scene, budget| charted(solver.model, solver.prepared, scene, both, budget),
-            |table, charts: &[Option<Chart>]| {
+            |table, charts: &[Option<Charted>]| {
                 let (controls, ranges) = (both.map(|(id, _)| id), both.map(|(_, range)| range));
                 let charts = Charts { table, controls, ranges, chosen: self.chosen, charts };
                 let result = chart::written(&charts, self.options.format.into(), self.page());

@@ -4,8 +4,9 @@ use crate::analysis::assess::assess;
 use crate::analysis::equilibria::{Budget, all};
 use crate::analysis::passage::{Found, Passage, Ways, identify};
 use crate::analysis::prepare::Prepared;
-use crate::analysis::response::{Chart, Control, Response, advise, band, chart, margins, respond};
+use crate::analysis::response::{Control, Response, advise, band, chart, front, margins, respond};
 use crate::model::{Model, ParameterId};
+use crate::report::response::chart::Charted;
 use crate::report::response::{Along, focus};
 use crate::report::table::{Limits, Names, Scene, Solved};
 
@@ -48,22 +49,24 @@ pub fn along(
     Some(Along { response, advice, focus, band, margins })
 }
 
-/// The chart of two parameters over their ranges, across and upwards; `None` for a scenario that failed.
+/// The chart of two parameters over their ranges, across and upwards, and the best pairs of yields; `None` for a scenario that failed.
 pub fn charted(
     model: &Model,
     prepared: &Prepared,
     scene: &Scene,
     varied: [(ParameterId, [f64; 2]); 2],
     budget: &Budget<'_>,
-) -> Option<Chart> {
+) -> Option<Charted> {
     let solved = scene.outcome.as_ref().ok()?;
-    let subject = prepared.subject(model, scene.scenario).ok()?;
+    let mut subject = prepared.subject(model, scene.scenario).ok()?;
     let [Some(across), Some(upwards)] = varied.map(|(parameter, [from, to])| {
         Some(Control { parameter, from, to, present: *solved.values.get(parameter.0)? })
     }) else {
         return None;
     };
-    Some(chart(&subject, [across, upwards], &solved.equilibria.list, budget))
+    let (controls, list) = ([across, upwards], &solved.equilibria.list);
+    let chart = chart(&subject, controls, list, budget);
+    Some(Charted { chart, front: front(&mut subject, controls, list, budget) })
 }
 
 /// Names the equilibria of scenarios in the order given, by following them from one to the next until `stop` says so.

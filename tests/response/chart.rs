@@ -6,7 +6,7 @@ use restpoint::analysis::equilibria::{Budget, OneByOne};
 use restpoint::analysis::linearise::Kind;
 use restpoint::analysis::response::chart::{self, Seed, chart_from};
 use restpoint::analysis::response::locate::Sign;
-use restpoint::analysis::response::{Chart, ChartPoint, ThresholdKind};
+use restpoint::analysis::response::{Chart, ChartPoint, Region, ThresholdKind};
 
 use crate::common::cases::{self, number};
 use crate::common::solve::{Method, solve};
@@ -176,6 +176,20 @@ fn curves_are_met_by_lines() {
         if (effort - 800.0).abs() < 1e-6 { [800.0, r1] } else { [1e4 * r1, r1] }
     });
     assert_eq!(found.regions.len(), 4, "{:?}", found.regions);
+}
+
+/// A stock without a fishery has x = K (1 − q E/r), lost at r = q E; with these figures that line runs through the middles of
+/// cells, and on it nothing is decided by the linear part. It is a border and no region.
+#[test]
+fn a_curve_through_the_middles_of_cells_is_no_region() {
+    let rows = [("H", "r*H*(1 - H/120) - 0.03*H*P - 0.02*E*H"), ("P", "P*(0.006*H - 0.4)")];
+    let text = ModelText::new("char", "200", &rows).with(&[("r", "0.8"), ("E", "10")]);
+    let found = whole_of(&text, [("E", 0.0, 40.0), ("r", 0.6, 1.0)]);
+    let mut counts: Vec<usize> = found.regions.iter().map(|region| region.equilibria.len()).collect();
+    counts.sort_unstable();
+    assert_eq!(counts, [1, 2, 3], "{:?}", found.regions);
+    let is_decided = |region: &Region| region.equilibria.iter().all(|state| state.kind != Some(Kind::Undecided));
+    assert!(found.regions.iter().all(is_decided), "{:?}", found.regions);
 }
 
 /// Published points of two parameters, from a fold near each: cusp and double eigenvalues 0.

@@ -90,6 +90,56 @@ fn two_parameters_make_a_chart() {
     }
     let shown = run(&["--of", "Q", "--of", "r", "--scenario", "plan"]).out;
     assert!(shown.contains("Q from 0 to 0.5, now 0.1; r from 0.5 to 1.5, now 1."), "{shown}");
+    let why = "they are of two harvests that take a species to be kept, and here there is 1";
+    assert!(flat(&shown).contains(&format!("No best yield pairs: {why}.")), "{shown}");
+    assert_eq!(json["scenarios"][0]["front"]["why"], why);
+}
+
+/// |p| is p for a p that is nowhere below 0, but the range that is asked for goes there: x = 1 + |p|.
+#[test]
+fn a_range_beyond_the_declared_one_has_its_own_states() {
+    let model = "title: t\ntime: yr\nspecies: {x: {upper: 10}}\nparameters: {p: {value: 0.5, range: [0, 1]}, q: {value: 1, \
+                 range: [0.5, 2]}}\nchange: {x: x*(q + abs(p) - x)}\n";
+    let shown = run_on(model, &["response", "-", "--of", "p", "--from", "-1", "--format", "json"]).out;
+    let json: Value = serde_json::from_str(&shown).unwrap();
+    let branches = json["scenarios"][0]["branches"].as_array().unwrap();
+    let with_x: Vec<&Value> = branches.iter().filter(|branch| branch["present"][0] == "x").collect();
+    let points = || with_x.iter().flat_map(|branch| branch["points"].as_array().unwrap());
+    assert!(points().any(|point| point["at"].as_f64() == Some(-1.0)), "{branches:?}");
+    for point in points() {
+        let [p, x] = [&point["at"], &point["state"]["x"]].map(|number| number.as_f64().unwrap());
+        assert!((x - 1.0 - p.abs()).abs() < 1e-9, "{point}");
+    }
+}
+
+/// Two stocks that have nothing to do with each other, each with its fleet: r K/4 of both at once (Schaefer 1954).
+#[test]
+fn the_best_pair_of_two_fleets_is_in_every_form() {
+    let model = "title: t\ntime: yr\nspecies: {x: {upper: 300, unit: t}, y: {upper: 300, unit: t}}\nparameters:\n  \
+                 E: {value: 0.1, range: [0, 0.9], control: true}\n  F: {value: 0.1, range: [0, 0.4], control: true}\n\
+                 change: {x: x*(1 - x/100), y: 0.5*y*(1 - y/160)}\n\
+                 harvest: {a: {takes: {x: E*x}}, b: {takes: {y: F*y}}}\n";
+    let ran = |form: &str| run_on(model, &["response", "-", "--of", "E", "--of", "F", "--format", form]).out;
+    let json: Value = serde_json::from_str(&ran("json")).unwrap();
+    let front = &json["scenarios"][0]["front"];
+    assert_eq!((&front["of"][1]["harvest"], &front["of"][1]["species"]), (&"b".into(), &"y".into()), "{front}");
+    let total = &front["total"];
+    let numbers = [
+        (&total["sum"], 45.0),
+        (&total["yields"][1], 20.0),
+        (&total["at"][0], 0.5),
+        (&total["at"][1], 0.25),
+        (&total["state"]["y"], 80.0),
+    ];
+    for (number, exact) in numbers {
+        assert!((number.as_f64().unwrap() - exact).abs() < 1e-6, "{total}");
+    }
+    for form in ["text", "markdown", "latex"] {
+        let said = "The largest yield of both together, 45.00 t/yr";
+        assert!(flat(&ran(form)).contains(said), "{form}: {}", ran(form));
+    }
+    let table = ran("csv");
+    assert!(table.contains("\nbest yield pair,") && table.contains("\nlargest total,"), "{table}");
 }
 
 #[test]

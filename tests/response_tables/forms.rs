@@ -73,6 +73,10 @@ fn text_of_a_chart_says_it_all_in_words() {
         "b: 4 states, undecided at E = 1.250, r = 1.000: 2 ● stable node (sprat and κοδ); 2 ◐ saddle (sprat).",
         "1 cusp 1.500 3.000 41.00 13.50 1 cusp: two folds meet and end: around it a jump can be avoided.",
         "fold 0.5000 1.500 0 3.000 yes fold 1.500 2.000 0 3.000 in part",
+        "Best yield pairs: neither can be raised without lowering the other (numerical)",
+        "0.5000 0.7500 10.00 4.000 40.00 12.50 1.000 0.7500 12.00 1.500 40.00 12.50",
+        "The largest yield of both together, 14.00 kt/yr, is at E = 0.5000 and r = 0.7500: trawl S 10.00, gill nets κ \
+         4.000 (numerical).",
     ] {
         assert!(flat.contains(expected), "no {expected:?} in\n{shown}");
     }
@@ -159,12 +163,14 @@ fn csv_has_a_row_for_all_that_there_is() {
 #[test]
 fn csv_of_a_chart_has_regions_points_and_curves() {
     let (head, records) = csv_of(&two(&model(), Form::Csv, PAGE));
-    assert_eq!(records.len(), 3 + 2 + 1 + 4);
+    assert_eq!(records.len(), 3 + 2 + 1 + 4 + 2 + 1);
     let check = |row: usize, fields: &[(&str, &str)]| check_fields(&head, &records[row], fields);
     check(0, &[("record", "scenario"), ("at E", "1.0"), ("at r", "0.5"), ("complete", "false")]);
     check(1, &[("record", "region"), ("region", "a"), ("at E", "0.25"), ("equilibria", "2"), ("complete", "true")]);
     check(2, &[("which", "2 stable node (sprat and κοδ); 2 saddle (sprat)")]);
     check(3, &[("record", "point"), ("kind", "cusp"), ("at r", "3.0"), ("state S (kt)", "41.0")]);
+    check(8, &[("record", "best yield pair"), ("at E", "0.5"), ("yield gill nets κ (kt/yr)", "4.0"), ("kind", "")]);
+    check(10, &[("record", "largest total"), ("yield trawl S (kt/yr)", "10.0"), ("state S (kt)", "40.0")]);
     check(6, &[("record", "curve"), ("curve", "2"), ("place", "1"), ("at E", "2.0"), ("bounds_stable", "false")]);
 }
 

@@ -11,3 +11,4 @@ mod support;
 mod table_support;
 #[path = "../tables/tex.rs"]
 mod tex;
+mod thinned;

@@ -4,14 +4,14 @@ use nalgebra::Complex;
 use restpoint::analysis::linearise::Kind;
 use restpoint::analysis::response::{
     Advice, Arm, Band, BestYield, Branch, Chart, ChartCurve, ChartPoint, ClosestEdge, Control, Criticality, Edge,
-    Ending, Gap, GapReason, Margins, OpenAccess, Point, Region, RegionState, Response, Station, Taking, Threshold,
-    ThresholdKind,
+    Ending, Front, FrontPoint, Gap, GapReason, Margins, OpenAccess, Point, Region, RegionState, Response, Station,
+    Taking, Threshold, ThresholdKind, Total,
 };
 use restpoint::model::{Model, ParameterId, SpeciesId};
-use restpoint::report::response::chart::{self, Charts};
+use restpoint::report::response::chart::{self, Charted, Charts};
 use restpoint::report::response::{Along, Chosen, FIELDS, Responses};
 
-use crate::table_support::{model, with_table_of};
+use crate::table_support::with_table_of;
 
 /// The parameter that is varied: E of the table's model.
 pub(crate) const CONTROL: ParameterId = ParameterId(1);
@@ -160,11 +160,6 @@ pub(crate) fn with_responses_of<T>(model: &Model, use_it: impl Fn(&Responses<'_>
     })
 }
 
-/// The same of the model of the table.
-pub(crate) fn with_responses<T>(use_it: impl Fn(&Responses<'_>) -> T) -> T {
-    with_responses_of(&model(), use_it)
-}
-
 /// A chart of E and r with a cusp: three states between two folds, one elsewhere.
 pub(crate) fn chart() -> Chart {
     let control = |parameter, to, present| Control { parameter, from: 0.0, to, present };
@@ -191,9 +186,21 @@ pub(crate) fn chart() -> Chart {
     }
 }
 
+/// Two pairs of what trawl and gill nets take of the two stocks, with the largest total between.
+pub(crate) fn front() -> Front {
+    let of = |harvest: &str, species| Taking { harvest: harvest.to_owned(), species: Some(SpeciesId(species)) };
+    let point = |at: f64, yields| FrontPoint { at: [at, 0.75], yields, state: vec![40.0, 12.5] };
+    Front {
+        takings: [of("trawl", 0), of("gill nets", 1)],
+        points: vec![point(0.5, [10.0, 4.0]), point(1.0, [12.0, 1.5])],
+        total: Total::At(point(0.5, [10.0, 4.0])),
+        is_whole: true,
+    }
+}
+
 /// Uses the charts of a model's three scenarios, of which the last two are not there.
 pub(crate) fn with_charts_of<T>(model: &Model, use_it: impl Fn(&Charts<'_>) -> T) -> T {
-    let charts = [Some(chart()), None, None];
+    let charts = [Some(Charted { chart: chart(), front: Ok(front()) }), None, None];
     let chosen = Chosen::all(&chart::FIELDS);
     let (controls, ranges) = ([CONTROL, ParameterId(0)], [[0.0, 2.0], [0.0, 4.0]]);
     with_table_of(model, None, |table| use_it(&Charts { table, controls, ranges, chosen: &chosen, charts: &charts }))

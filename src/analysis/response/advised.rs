@@ -1,6 +1,6 @@
 //! What a response says of margins and catches, in words for tables and screens.
 
-use super::{Threshold, ThresholdKind};
+use super::{Taking, Threshold, ThresholdKind};
 use crate::model::{ParameterId, SpeciesId};
 
 /// How a state is lost at the end of its band.
@@ -128,6 +128,39 @@ pub struct FrontPoint {
     pub yields: [f64; 2],
     /// The state there.
     pub state: Vec<f64>,
+}
+
+/// The best pairs of yields over two controls.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Front {
+    /// What the two harvests take, in the order of the plan.
+    pub takings: [Taking; 2],
+    /// By rising yield of the first; empty where the best of stable coexistence is nowhere at rest.
+    pub points: Vec<FrontPoint>,
+    /// The largest sum of both.
+    pub total: Total,
+    /// Whether it was looked for to the end.
+    pub is_whole: bool,
+}
+
+/// The largest sum of two yields.
+#[derive(Clone, Debug, PartialEq)]
+pub enum Total {
+    /// A stable state has it.
+    At(FrontPoint),
+    /// No stable state was found that has it; it may only be approached where states are lost.
+    NotFound,
+    /// The two are not of one unit, so there is no sum.
+    OfDifferentUnits,
+}
+
+/// Why there are no best pairs.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub enum NoFront {
+    /// So many harvests take what is to be kept; it needs two.
+    Harvests(usize),
+    /// This harvest takes more than one species.
+    SeveralSpecies(String),
 }
 
 /// What the response says of catches.

@@ -8,13 +8,13 @@
 use super::advice::has_kept;
 use super::equations::Equations;
 use super::footing::Footing;
+use super::harvested::{Harvested, are_of_one_unit};
+use super::peak::{Goal, refined, walked};
 use super::terrain::{Place, Terrain};
 use super::watch::Watch;
-use super::{Control, FrontPoint, Taking};
+use super::{Control, Front, FrontPoint, NoFront, Total};
 use crate::analysis::equilibria::{Budget, Equilibrium, Problem, all};
-use crate::analysis::passage::{dot, solve};
 use crate::analysis::subject::Subject;
-use crate::expr::graph::Operation;
 
 /// Nodes of the grid along either control.
 const GRID: usize = 25;
@@ -22,29 +22,25 @@ const GRID: usize = 25;
 const POINTS: usize = 25;
 /// Shares of the ranges at which states are searched for, beside those of the present.
 const SEARCHED: [f64; 3] = [1.0 / 6.0, 0.5, 5.0 / 6.0];
-/// Newton steps for a point.
-const STEPS: usize = 40;
-/// Half the width of a difference by which a slope's own slope is estimated; it sets the speed, not the result.
-const PROBE: f64 = 1e-5;
-/// The longest step, as a share of the ranges.
-const LONGEST: f64 = 0.1;
-/// What is left at a stationary point: sine of the angle between slopes, or share of a yield.
-const STATIONARY: f64 = 1e-10;
+/// A control that changes yields and states by no more than this share over its range changes nothing.
+const FLAT: f64 = 1e-9;
 /// A yield is better by more than this share.
 const BETTER: f64 = 1e-9;
 
-/// The front of two controls, by rising yield of the first harvest. Empty unless the plan has two harvests of amounts (or
-/// two that a control is in), each of one species. `list` are the equilibria at the present values.
+/// The front of two controls, and the largest total on it. `list` are the equilibria at the present values.
+///
+/// # Errors
+/// Why there is none: it needs two harvests of amounts (or two that a control is in), each of one species that is to be kept.
 pub fn front(
     subject: &mut Subject<'_>,
     controls: [Control; 2],
     list: &[Equilibrium],
     budget: &Budget<'_>,
-) -> Vec<FrontPoint> {
+) -> Result<Front, NoFront> {
     let mut equations = Equations::new(subject, &controls.map(|control| control.parameter));
-    let Some(parts) = two_harvests(&equations) else { return Vec::new() };
+    let harvested = Harvested::of(&equations, subject.model)?;
     let ranges = controls.map(|control| [control.from, control.to - control.from]);
-    let mut found: Vec<(Place, Vec<f64>)> = Vec::new();
+    let mut search = Search { adds: are_of_one_unit(subject.model, &harvested.takings), ..Search::default() };
     for (present, seeds) in faces(subject, controls, list, budget) {
         if (budget.stop)() {
             break;
@@ -54,57 +50,80 @@ pub fn front(
         let largest = |&i: &usize| seeds.iter().fold(0.0f64, |most, (_, state)| most.max(state[i].abs()));
         let sized = |size: f64| if size > 0.0 { size } else { 1.0 };
         let scale = footing.face.moving.iter().map(largest).map(sized).chain([1.0]).collect();
-        let mut terrain = Terrain::new(&footing, &watch, scale, ranges, parts.clone());
+        let mut terrain = Terrain::new(&footing, &watch, scale, ranges, harvested.parts.clone());
         let grid = Grid::filled(&mut terrain, &seeds, budget);
-        let whole = |place: Place| {
-            let state = footing.state(&place.x);
-            (place, state)
-        };
-        let is_kept = |(_, state): &(Place, Vec<f64>)| has_kept(subject.model, state);
-        found.extend(along(&mut terrain, &grid).into_iter().map(whole).filter(is_kept));
+        let is_kept = |place: &Place| has_kept(subject.model, &footing.state(&place.x));
+        search.add(&mut terrain, &grid, &is_kept);
     }
-    let places: Vec<Place> = found.iter().map(|(place, _)| place.clone()).collect();
-    let room = rooms(&places);
-    found.retain(|(place, _)| !places.iter().any(|other| dominates(other, place, room)));
-    found.sort_by(|a, b| a.0.yields[0].total_cmp(&b.0.yields[0]));
-    found.dedup_by(|a, b| (0..2).all(|i| (a.0.yields[i] - b.0.yields[i]).abs() <= room[i]));
-    let point = |(place, state): (Place, Vec<f64>)| FrontPoint {
-        at: [0, 1].map(|j| ranges[j][0] + place.share[j] * ranges[j][1]),
+    let steepest = search.steepest;
+    let (points, total) = search.ended(&|place| FrontPoint {
+        // Where a control changes nothing any value would do.
+        at: [0, 1].map(|j| {
+            if steepest[j] > FLAT { ranges[j][0] + place.share[j] * ranges[j][1] } else { controls[j].present }
+        }),
         yields: place.yields,
-        state,
-    };
-    found.into_iter().map(point).collect()
+        state: place.state.clone(),
+    });
+    Ok(Front { takings: harvested.takings, points, total, is_whole: !(budget.stop)() })
 }
 
-/// Takings of either harvest; `None` where there are not two of them.
-fn two_harvests(equations: &Equations) -> Option<[Vec<usize>; 2]> {
-    let takings = &equations.takings;
-    let mut harvests: Vec<(&str, Vec<usize>)> = Vec::new();
-    for (place, taking) in takings.iter().enumerate().filter(|(_, taking)| taking.species.is_some()) {
-        match harvests.iter_mut().find(|(name, _)| *name == taking.harvest) {
-            Some((_, parts)) => parts.push(place),
-            None => harvests.push((&taking.harvest, vec![place])),
+/// What was found on the faces so far.
+#[derive(Default)]
+struct Search {
+    /// Whether the two yields may be added.
+    adds: bool,
+    /// Pairs that are best on their face.
+    found: Vec<Spot>,
+    /// Places of a largest total.
+    totals: Vec<Spot>,
+    /// The largest total at a node of any grid.
+    most: f64,
+    /// What either control changes at most, by a share of its range, relative.
+    steepest: [f64; 2],
+}
+
+/// A place without its face.
+#[derive(Clone)]
+struct Spot {
+    share: [f64; 2],
+    yields: [f64; 2],
+    /// All species.
+    state: Vec<f64>,
+}
+
+impl Search {
+    fn add(&mut self, terrain: &mut Terrain<'_>, grid: &Grid, is_kept: &dyn Fn(&Place) -> bool) {
+        let steepest = |j: usize| grid.places().map(|place| place.steepness(j)).fold(self.steepest[j], f64::max);
+        self.steepest = [steepest(0), steepest(1)];
+        let mut found = along(terrain, grid);
+        let mut totals = Vec::new();
+        if let Some(best) = grid.places().filter(|_| self.adds).max_by(|a, b| a.total().total_cmp(&b.total())) {
+            self.most = self.most.max(best.total());
+            totals.extend(refined(terrain, best, &Goal::Total));
         }
+        found.extend(totals.iter().cloned());
+        let footing = terrain.standing.footing;
+        let spot = |place: Place| Spot { share: place.share, yields: place.yields, state: footing.state(&place.x) };
+        self.found.extend(found.into_iter().filter(is_kept).map(spot));
+        self.totals.extend(totals.into_iter().filter(is_kept).map(spot));
     }
-    if harvests.len() > 2 {
-        harvests.retain(|(_, parts)| parts.iter().any(|&place| is_controlled(equations, place)));
-    }
-    let is_of_one = |(_, parts): &(&str, Vec<usize>)| {
-        let species = |taking: &Taking| taking.species;
-        parts.iter().all(|&place| species(&takings[place]) == species(&takings[parts[0]]))
-    };
-    if harvests.len() != 2 || !harvests.iter().all(is_of_one) {
-        return None;
-    }
-    let mut parts = harvests.into_iter().map(|(_, parts)| parts);
-    Some([parts.next()?, parts.next()?])
-}
 
-/// Whether a control stands in what a taking is.
-fn is_controlled(equations: &Equations, place: usize) -> bool {
-    let controls = equations.control(0)..=equations.control(1);
-    let nodes = equations.graph.reachable(&[equations.given[place]]);
-    nodes.iter().any(|&node| matches!(equations.graph.operation(node), Operation::State(i) if controls.contains(&i)))
+    /// What no other pair has more of, by rising first yield; and the largest total.
+    fn ended(mut self, point: &dyn Fn(&Spot) -> FrontPoint) -> (Vec<FrontPoint>, Total) {
+        let pairs: Vec<[f64; 2]> = self.found.iter().map(|spot| spot.yields).collect();
+        let room = rooms(pairs.iter().copied());
+        self.found.retain(|spot| !pairs.iter().any(|&other| dominates(other, spot.yields, room)));
+        self.found.sort_by(|a, b| a.yields[0].total_cmp(&b.yields[0]));
+        self.found.dedup_by(|a, b| (0..2).all(|i| (a.yields[i] - b.yields[i]).abs() <= room[i]));
+        let sum = |spot: &Spot| spot.yields[0] + spot.yields[1];
+        let largest = self.totals.iter().max_by(|a, b| sum(a).total_cmp(&sum(b)));
+        let total = match largest {
+            _ if !self.adds => Total::OfDifferentUnits,
+            Some(spot) if sum(spot) >= self.most * (1.0 - BETTER) => Total::At(point(spot)),
+            _ => Total::NotFound,
+        };
+        (self.found.iter().map(point).collect(), total)
+    }
 }
 
 /// A pair of shares of the ranges, and a state there.
@@ -217,26 +236,16 @@ fn neighbours(node: usize) -> impl Iterator<Item = usize> {
     [left, right, below, above].into_iter().flatten()
 }
 
-/// From a place to other controls in short steps; `None` where the state is lost on the way.
-fn walked(terrain: &mut Terrain<'_>, mut place: Place, goal: [f64; 2]) -> Option<Place> {
-    for k in 1..=8u8 {
-        let left = 1.0 / f64::from(9 - k);
-        let share = [0, 1].map(|j| place.share[j] + left * (goal[j] - place.share[j]));
-        place = terrain.beside(&place, if k == 8 { goal } else { share })?;
-    }
-    Some(place)
-}
-
 /// Differences of either yield that are none.
-fn rooms<'p>(places: impl IntoIterator<Item = &'p Place>) -> [f64; 2] {
-    let larger = |most: [f64; 2], place: &Place| [0, 1].map(|i| most[i].max(place.yields[i].abs()));
-    places.into_iter().fold([0.0; 2], larger).map(|most| BETTER * most)
+fn rooms(pairs: impl IntoIterator<Item = [f64; 2]>) -> [f64; 2] {
+    let larger = |most: [f64; 2], pair: [f64; 2]| [0, 1].map(|i| most[i].max(pair[i].abs()));
+    pairs.into_iter().fold([0.0; 2], larger).map(|most| BETTER * most)
 }
 
-/// Whether one has more of both yields, or as much of one and more of the other.
-fn dominates(a: &Place, b: &Place, room: [f64; 2]) -> bool {
-    let is_no_less = (0..2).all(|i| a.yields[i] >= b.yields[i] - room[i]);
-    is_no_less && (0..2).any(|i| a.yields[i] > b.yields[i] + room[i])
+/// Whether one pair has more of both yields, or as much of one and more of the other.
+fn dominates(a: [f64; 2], b: [f64; 2], room: [f64; 2]) -> bool {
+    let is_no_less = (0..2).all(|i| a[i] >= b[i] - room[i]);
+    is_no_less && (0..2).any(|i| a[i] > b[i] + room[i])
 }
 
 /// Points of the front near the best nodes of a grid.
@@ -263,8 +272,8 @@ fn along(terrain: &mut Terrain<'_>, grid: &Grid) -> Vec<Place> {
         points.extend(refined(terrain, start, &Goal::Given { first: goal, size: from.abs().max(to.abs()) }));
     }
     // What a node of the grid has more of is no point of the front.
-    let room = rooms(grid.places());
-    points.retain(|point| !best.iter().any(|node| dominates(node, point, room)));
+    let room = rooms(grid.places().map(|place| place.yields));
+    points.retain(|point| !best.iter().any(|node| dominates(node.yields, point.yields, room)));
     points
 }
 
@@ -272,128 +281,4 @@ fn along(terrain: &mut Terrain<'_>, grid: &Grid) -> Vec<Place> {
 fn hangs_on(grid: &Grid, which: usize, control: usize) -> bool {
     let steepest = |j: usize| grid.places().fold(0.0f64, |most, place| most.max(place.slopes[which][j].abs()));
     steepest(control) > BETTER * steepest(1 - control)
-}
-
-/// What a point is to be.
-enum Goal {
-    /// The largest of a yield.
-    Most {
-        /// Which.
-        which: usize,
-        /// The yield whose slope by either control is to be 0: this one, or the other where this does not hang on it.
-        by: [usize; 2],
-    },
-    /// The largest second yield where the first is this; and the size that differences of it are measured by.
-    Given { first: f64, size: f64 },
-}
-
-/// The stationary point near a place: inside the ranges, or on the end of one that it is led to.
-fn refined(terrain: &mut Terrain<'_>, start: &Place, goal: &Goal) -> Option<Place> {
-    let mut held: [Option<f64>; 2] =
-        start.share.map(|share| if share == 0.0 || share == 1.0 { Some(share) } else { None });
-    // Free first: the nearest node may lie at an end of a range by chance.
-    for free in [[true, true], [held[0].is_none(), held[1].is_none()]] {
-        if let Some(found) = newton(terrain, start, goal, free)
-            && is_best(&found, goal, free)
-        {
-            return Some(found);
-        }
-    }
-    for j in 0..2 {
-        held[j].get_or_insert(start.share[j].round());
-        let mut free = [true; 2];
-        free[j] = false;
-        let Some(end) = held[j] else { continue };
-        let mut share = start.share;
-        share[j] = end;
-        if let Some(start) = walked(terrain, start.clone(), share)
-            && let Some(found) = newton(terrain, &start, goal, free)
-            && is_best(&found, goal, free)
-        {
-            return Some(found);
-        }
-    }
-    None
-}
-
-/// What is to be 0: one number a free control, each without unit.
-fn residual(place: &Place, goal: &Goal, free: [bool; 2]) -> Vec<f64> {
-    let size = |slopes: &[f64; 2]| dot(slopes, slopes).sqrt().max(f64::MIN_POSITIVE);
-    match goal {
-        Goal::Most { by, .. } => {
-            // Measured by the yield, for at a largest one the slope itself is 0.
-            let share = |j: usize| place.slopes[by[j]][j] / place.yields[by[j]].abs().max(f64::MIN_POSITIVE);
-            (0..2).filter(|&j| free[j]).map(share).collect()
-        }
-        Goal::Given { first, size: whole } => {
-            let mut all = vec![(place.yields[0] - first) / whole];
-            if free == [true, true] {
-                let [a, b] = &place.slopes;
-                all.push((a[0] * b[1] - a[1] * b[0]) / (size(a) * size(b)));
-            }
-            all
-        }
-    }
-}
-
-/// Newton's method on the free controls, with slopes of residuals by differences: these set how fast it goes and nothing
-/// else, for the residuals themselves are exact.
-fn newton(terrain: &mut Terrain<'_>, start: &Place, goal: &Goal, free: [bool; 2]) -> Option<Place> {
-    let places: Vec<usize> = (0..2).filter(|&j| free[j]).collect();
-    let mut here = start.clone();
-    let mut least = f64::INFINITY;
-    for _ in 0..STEPS {
-        let now = residual(&here, goal, free);
-        let size = now.iter().fold(0.0f64, |most, x| most.max(x.abs()));
-        // Once good, as long as it gets better.
-        if (size <= STATIONARY && size >= 0.5 * least) || size == 0.0 || (places.is_empty() && size <= STATIONARY) {
-            return Some(here);
-        }
-        if now.len() != places.len() || !size.is_finite() {
-            return None;
-        }
-        least = least.min(size);
-        let n = places.len();
-        let mut matrix = vec![0.0; n * n];
-        for (column, &j) in places.iter().enumerate() {
-            let mut share = here.share;
-            let step = if share[j] + PROBE <= 1.0 { PROBE } else { -PROBE };
-            share[j] += step;
-            let beside = terrain.beside(&here, share)?;
-            let moved = residual(&beside, goal, free);
-            (0..n).for_each(|i| matrix[i * n + column] = (moved[i] - now[i]) / step);
-        }
-        let mut step: Vec<f64> = now.iter().map(|x| -x).collect();
-        solve(&mut matrix, &mut step)?;
-        let longest = step.iter().fold(0.0f64, |most, x| most.max(x.abs()));
-        let cut = (LONGEST / longest).min(1.0);
-        let mut share = here.share;
-        places.iter().zip(&step).for_each(|(&j, part)| share[j] += cut * part);
-        if !share.iter().all(|share| (-0.5 * LONGEST..=1.0 + 0.5 * LONGEST).contains(share)) {
-            return None;
-        }
-        here = terrain.beside(&here, share)?;
-    }
-    None
-}
-
-/// Whether a stationary point is within the ranges and largest, not least: yields trade against each other, and at an end of
-/// a range what lies inside has less.
-fn is_best(place: &Place, goal: &Goal, free: [bool; 2]) -> bool {
-    if !place.share.iter().all(|share| (0.0..=1.0).contains(share)) {
-        return false;
-    }
-    let [a, b] = &place.slopes;
-    let inward = |j: usize| if place.share[j] == 0.0 { 1.0 } else { -1.0 };
-    let held = (0..2).filter(|&j| !free[j]);
-    match goal {
-        Goal::Most { which, .. } => held.into_iter().all(|j| place.slopes[*which][j] * inward(j) <= 0.0),
-        Goal::Given { .. } if free == [true, true] => dot(a, b) <= 0.0,
-        Goal::Given { .. } => {
-            // b + λ a is 0 along the free control for some λ ≥ 0, and leads out of the range along the other.
-            let Some(along) = (0..2).find(|&j| free[j]) else { return true };
-            let share = -b[along] / a[along];
-            share >= 0.0 && held.into_iter().all(|j| (b[j] + share * a[j]) * inward(j) <= 0.0)
-        }
-    }
 }

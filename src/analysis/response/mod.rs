@@ -23,9 +23,11 @@ pub mod equations;
 mod events;
 mod footing;
 mod front;
+mod harvested;
 pub mod locate;
 mod margins;
 mod open_access;
+mod peak;
 mod picture;
 mod piece;
 mod ray;
@@ -44,7 +46,9 @@ mod watch;
 mod yields;
 
 pub use advice::advise;
-pub use advised::{Advice, Band, BestYield, ClosestEdge, Edge, FrontPoint, Margins, OpenAccess, Removal};
+pub use advised::{
+    Advice, Band, BestYield, ClosestEdge, Edge, Front, FrontPoint, Margins, NoFront, OpenAccess, Removal, Total,
+};
 pub use bands::band;
 pub use chart::chart;
 pub use charted::{Chart, ChartCurve, ChartPoint, Region, RegionState};

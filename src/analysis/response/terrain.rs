@@ -21,6 +21,26 @@ pub(super) struct Place {
     moves: [Vec<f64>; 2],
 }
 
+impl Place {
+    /// Both yields together.
+    pub(super) fn total(&self) -> f64 {
+        self.yields[0] + self.yields[1]
+    }
+
+    /// The largest change by a share: of a yield, and of an abundance measured by it.
+    pub(super) fn steepness(&self, control: usize) -> f64 {
+        let relative = |dx: f64, x: f64| if x == 0.0 { 0.0 } else { (dx / x).abs() };
+        let yields = (0..2).map(|i| relative(self.slopes[i][control], self.yields[i]));
+        let states = self.moves[control].iter().zip(&self.x).map(|(&dx, &x)| relative(dx, x));
+        yields.chain(states).fold(0.0, f64::max)
+    }
+
+    /// Slope of both together by a share.
+    pub(super) fn total_slope(&self, control: usize) -> f64 {
+        self.slopes[0][control] + self.slopes[1][control]
+    }
+}
+
 /// What the two yields stand on.
 pub(super) struct Terrain<'f> {
     pub(super) standing: Standing<'f>,

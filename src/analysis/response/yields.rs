@@ -6,6 +6,7 @@
 
 use super::advice::Ledger;
 use super::footing::Standing;
+use super::harvested::are_of_one_unit;
 use super::stretches::{Stretch, StretchEnd};
 use super::{BestYield, Point, Taking};
 use crate::analysis::passage::{crossing, dot};
@@ -36,17 +37,6 @@ pub(super) fn best(
         wanted.push((None, amounts));
     }
     wanted.iter().filter_map(|(taking, parts)| largest(ledger, keeping, *taking, parts, stop)).collect()
-}
-
-/// Whether all amounts taken may be added.
-fn are_of_one_unit<'t>(model: &Model, takings: impl Iterator<Item = &'t Taking>) -> bool {
-    let unit = |taking: &Taking| {
-        let species = &model.species[taking.species?.0];
-        Some(species.unit.as_ref().map(|unit| unit.value.split_whitespace().collect::<String>()))
-    };
-    let mut units = takings.filter_map(unit);
-    let first = units.next();
-    units.all(|unit| Some(unit) == first)
 }
 
 /// A spot of a stretch, with its yield.

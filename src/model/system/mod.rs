@@ -93,6 +93,18 @@ impl System {
     /// # Errors
     /// Where a scenario's value is not finite, or the formulas are too many; each with its place.
     pub fn new(model: &Model, set: &[(super::ParameterId, f64)]) -> Result<Self, Vec<Diagnostic>> {
+        Self::over(model, set, &[])
+    }
+
+    /// The same, sound as well where parameters are varied over these ranges beyond what the model says of them.
+    ///
+    /// # Errors
+    /// As for [`System::new`].
+    pub fn over(
+        model: &Model,
+        set: &[(super::ParameterId, f64)],
+        ranges: &[(super::ParameterId, [f64; 2])],
+    ) -> Result<Self, Vec<Diagnostic>> {
         let mut problems = Vec::new();
         let mut values = Vec::new();
         for scenario in 0..model.scenarios.len() {
@@ -104,7 +116,7 @@ impl System {
         if !problems.is_empty() {
             return Err(problems);
         }
-        let mut graph = Graph::new(model.species.len(), domains(model, &values));
+        let mut graph = Graph::new(model.species.len(), domains(model, &values, ranges));
         let block = model.block.as_ref().map(|block| add_block(model, &mut graph, block)).transpose()?;
         let mut plans = Vec::new();
         for (scenario, values) in values.into_iter().enumerate() {
@@ -119,8 +131,9 @@ impl System {
     }
 }
 
-/// For each parameter, all values that scenarios and ranges give it, and the positive numbers for a lognormal draw.
-fn domains(model: &Model, values: &[Vec<f64>]) -> Vec<Interval> {
+/// For each parameter, all values that scenarios and ranges give it, its own and those asked for, and the positive numbers
+/// for a lognormal draw.
+fn domains(model: &Model, values: &[Vec<f64>], asked: &[(super::ParameterId, [f64; 2])]) -> Vec<Interval> {
     let domain = |(i, parameter): (usize, &super::Parameter)| {
         let mut domain = Interval::point(parameter.value);
         for scenario in values {
@@ -128,6 +141,9 @@ fn domains(model: &Model, values: &[Vec<f64>]) -> Vec<Interval> {
         }
         if let Some(range) = &parameter.range {
             domain = domain.hull(Interval::new(range.value[0], range.value[1]));
+        }
+        for (_, [from, to]) in asked.iter().filter(|(id, _)| id.0 == i) {
+            domain = domain.hull(Interval::new(*from, *to));
         }
         if let Some(Draw::Lognormal { .. }) = parameter.draw.as_ref().map(|draw| draw.value) {
             domain = domain.hull(Interval::new(f64::MIN_POSITIVE, f64::MAX));

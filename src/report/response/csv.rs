@@ -1,4 +1,4 @@
-//! Responses as CSV (RFC 4180): one rectangle, a row for each point of each branch, each threshold, best yield and band.
+//! Responses as CSV (RFC 4180): one rectangle, a row for each written point of each branch, each threshold, best yield and band.
 //!
 //! The first field says what a row is, so that a spreadsheet's filter makes one list of it; [`FIELDS`](super::FIELDS) has what
 //! is in the others, empty where a row has none. Each scenario begins with a row of its own, failed or not, which alone has
@@ -13,6 +13,7 @@ use super::super::table::csv::{constants, line};
 use super::super::table::{Style, exact, optional, scene};
 use super::fields::{Chosen, Row};
 use super::sheets::{branch_id, passes};
+use super::thin::Scales;
 use super::words::{criticality, kind, name, taking, taking_unit};
 use super::{One, Responses, is_complete, meaning, summary};
 
@@ -73,7 +74,8 @@ pub(super) fn state_name(table: &super::Table<'_>, species: usize) -> String {
     format!("state {}{unit}", species.symbol)
 }
 
-fn taking_name(table: &super::Table<'_>, one: &Taking) -> String {
+/// The field of what a harvest gives.
+pub(super) fn taking_name(table: &super::Table<'_>, one: &Taking) -> String {
     if one.species.is_none() {
         return taking(table.model, one).replacen("value of ", "value ", 1);
     }
@@ -88,11 +90,12 @@ fn rows(one: &One<'_>, base: &Row) -> Vec<Row> {
         response.thresholds.iter().map(|threshold| self::threshold(one, threshold, base)).collect();
     rows.extend(one.along.advice.best.iter().map(|best| best_yield(one, best, base)));
     rows.extend(one.along.margins.bands.iter().map(|band| self::band(one, band, base)));
+    let scales = Scales::of(response);
     for (place, branch) in response.branches.iter().enumerate() {
         let base = base.clone().with("record", "point").with("branch", branch_id(place));
         let base =
             base.with("equilibrium", passes(one, branch).join(" ")).with("present", symbols(one, &branch.present));
-        let points = branch.points.iter().enumerate();
+        let points = scales.written(branch).into_iter().enumerate();
         rows.extend(points.map(|(along, point)| self::point(one, point, &base.clone().with("place", along + 1))));
     }
     rows

@@ -12,6 +12,7 @@ use super::super::kinds;
 use super::super::table::columns::by_symbol;
 use super::super::table::{self, Table, exact, optional};
 use super::sheets::{branch_id, passes};
+use super::thin::Scales;
 use super::words::{criticality, ending, gap, kind, name};
 use super::{One, Responses, is_complete, meaning, summary};
 
@@ -31,13 +32,14 @@ pub fn json(responses: &Responses<'_>) -> Value {
 fn scenario(one: &One<'_>) -> Value {
     let along = one.along;
     let Response { control, branches, thresholds, .. } = &along.response;
+    let scales = Scales::of(&along.response);
     let mut all = json!({
         "name": table::scene::name(one.table.model, one.scene),
         "of": name(one.table.model, control.parameter),
         "range": [exact(control.from), exact(control.to)],
         "complete": is_complete(&along.response),
         "thresholds": thresholds.iter().map(|threshold| self::threshold(one, threshold)).collect::<Vec<_>>(),
-        "branches": branches.iter().enumerate().map(|(place, b)| branch(one, place, b)).collect::<Vec<_>>(),
+        "branches": branches.iter().enumerate().map(|(place, b)| branch(one, place, b, &scales)).collect::<Vec<_>>(),
         "best_yield": along.advice.best.iter().map(|best| best_yield(one, best)).collect::<Vec<_>>(),
         "present": exact(control.present),
         "focus": along.focus.and_then(|place| one.ids.get(place)),
@@ -114,12 +116,12 @@ fn arm(one: &One<'_>, arm: &Arm) -> Value {
     })
 }
 
-fn branch(one: &One<'_>, place: usize, branch: &Branch) -> Value {
+fn branch(one: &One<'_>, place: usize, branch: &Branch, scales: &Scales) -> Value {
     let passes = passes(one, branch);
     json!({
         "id": branch_id(place),
         "equilibrium": passes.first(),
-        "points": branch.points.iter().map(|point| self::point(one, point)).collect::<Vec<_>>(),
+        "points": scales.written(branch).into_iter().map(|point| self::point(one, point)).collect::<Vec<_>>(),
         "present": symbols(one, &branch.present),
         "passes": passes,
         "ends": branch.ends.map(|end| self::end(one, end)),

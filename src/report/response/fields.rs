@@ -32,7 +32,10 @@ pub const FIELDS: [Field; 26] = [
     field("of", "the parameter that is varied; of a band the one that it is of"),
     field("at", "its value; of a scenario and a band the present one"),
     field("branch", "the branch of a point or a best yield: B1, B2, ..."),
-    field("place", "of a point its place along the branch, from 1"),
+    field(
+        "place",
+        "of a point its place among those written of the branch, from 1: ends, thresholds, changes of type, and so many more that straight lines show the branch",
+    ),
     field("equilibrium", "the row of the table that a branch passes through at the present value"),
     field("present", "symbols of those present"),
     each("state", "abundance of each species, in its unit"),

@@ -2,7 +2,8 @@
 //!
 //! [`Responses`] has it all: the scenarios as in a table, and of each what was found [`Along`] the control. `meaning` says
 //! what a threshold means, `summary` the whole in a few sentences, `said` all else that is said in sentences, `sheets` makes
-//! the tables, `paper` the forms for people of them, [`plot`] draws; `csv` and `data` are for spreadsheets and programs. `words` has
+//! the tables, `paper` the forms for people of them, [`plot`] draws; `csv` and `data` are for spreadsheets and programs,
+//! which get the points that `thin` leaves of each branch. `words` has
 //! pieces of sentences. Two controls are in `chart`.
 //!
 //! Branches, thresholds, yields and margins are numerical, and every form says so; only the count of equilibria along the
@@ -17,6 +18,8 @@
 //! - `bands`: one a parameter, `{"parameter", "present", "from", "to", "edges": [{"what", "kind"}], "margin": {"amount",
 //!   "share", "side"}}`; `closest_edge`: `{"kind", "values", "distance", "state", "residual", "within_ranges", "starts"}` or null
 //! - `open_access`: `{"harvest", "at", "state", "branch"}`; `removal`: `{"species", "at", "kind"}`
+//! - of a branch not all `points` that were followed, but so many that straight lines between them are within 1/500 of what
+//!   each number spans; always its ends, its thresholds and both sides of a change of type
 //! - in a threshold: `proven`, `species`, `arms`, `kink`, `other_side`, `error`; in a branch: `present`, `passes` (names of all
 //!   that it passes through), `ends`; in its points: `stable`, `feasible`, `leading`, `value`, `threshold` (place in the list);
 //!   in a best yield: `of` (`yield`, `value` or `total`), `branch`, `nearest`
@@ -32,6 +35,7 @@ mod said;
 mod segments;
 mod sheets;
 mod summary;
+mod thin;
 pub mod words;
 
 pub use csv::csv;

@@ -20,6 +20,13 @@ const FINER: usize = 3;
 /// Columns and rows of the grid that is worked on.
 const GRID: [usize; 2] = [GIVEN[0] * FINER, GIVEN[1] * FINER];
 
+/// Where a cell is looked at, in widths of it from its middle. Curves of models with round figures run through middles, where
+/// nothing is decided; this is near one, and irrational, so that they do not meet it.
+const LOOKED_AT: [f64; 2] = [0.5 * std::f64::consts::SQRT_2 - 0.65, 0.1 * std::f64::consts::PI - 0.28];
+
+/// How far from there it is looked at again, in widths of a cell, where that place lies on a curve.
+const BESIDE: [f64; 2] = [0.31, -0.23];
+
 /// One cell of so many each way is searched, to check that a region is of one kind.
 const CHECKED: usize = 6 * FINER;
 
@@ -107,9 +114,19 @@ impl<'s> Searcher<'s> {
     /// What is at the middle of a cell; `None` where the search was stopped.
     fn at(&mut self, cell: usize, budget: &Budget<'_>) -> Option<&Region> {
         if self.known[cell].is_none() {
-            self.known[cell] = self.searched(middle(&self.controls, cell), budget);
+            self.known[cell] = self.off_curves(cell, budget);
         }
         self.known[cell].as_ref()
+    }
+
+    /// What is in a cell: at its place, or beside where that place is on a curve.
+    fn off_curves(&mut self, cell: usize, budget: &Budget<'_>) -> Option<Region> {
+        let found = self.searched(middle(&self.controls, cell), budget)?;
+        if !is_critical(&found) {
+            return Some(found);
+        }
+        let beside = self.searched(place(&self.controls, cell, BESIDE), budget);
+        Some(beside.filter(|beside| !is_critical(beside)).unwrap_or(found))
     }
 
     fn searched(&mut self, inside: [f64; 2], budget: &Budget<'_>) -> Option<Region> {
@@ -134,7 +151,12 @@ impl<'s> Searcher<'s> {
     fn other_kind(&mut self, owner: &[usize], members: &[usize], budget: &Budget<'_>) -> Option<usize> {
         let first = self.at(deepest(owner, members), budget).map(likeness)?;
         let checked: Vec<usize> = members.iter().copied().filter(|&cell| is_checked(cell)).collect();
-        checked.into_iter().find(|&cell| self.at(cell, budget).map(likeness).is_some_and(|found| found != first))
+        checked.into_iter().find(|&cell| {
+            let expected = middle(&self.controls, cell);
+            // What is found beside a place on a curve may be of the other side.
+            let is_other = |found: &Region| found.inside == expected && likeness(found) != first;
+            self.at(cell, budget).is_some_and(is_other)
+        })
     }
 
     /// Gives small components to one of the same kind nearby, across curves that leave less than a cell between.
@@ -180,12 +202,22 @@ fn is_checked(cell: usize) -> bool {
     cell % GRID[0] % CHECKED == middle && cell / GRID[0] % CHECKED == middle
 }
 
-/// The controls at the middle of a cell.
+/// Whether something is undecided by the linear part, as on a curve.
+fn is_critical(region: &Region) -> bool {
+    region.equilibria.iter().any(|state| matches!(state.kind, Some(Kind::Undecided | Kind::Centre)))
+}
+
+/// The controls where a cell is looked at, near its middle.
 fn middle(controls: &[Control; 2], cell: usize) -> [f64; 2] {
+    place(controls, cell, [0.0; 2])
+}
+
+/// The controls at a place of a cell, so many of its widths from there.
+fn place(controls: &[Control; 2], cell: usize, off: [f64; 2]) -> [f64; 2] {
     let place = [cell % GRID[0], cell / GRID[0]];
     std::array::from_fn(|k| {
         let Control { from, to, .. } = controls[k];
-        from + (to - from) * (place[k] as f64 + 0.5) / GRID[k] as f64
+        from + (to - from) * (place[k] as f64 + 0.5 + LOOKED_AT[k] + off[k]) / GRID[k] as f64
     })
 }
 
@@ -283,7 +315,7 @@ impl Cells {
         let place = |point: &[f64; 2]| -> [f64; 2] {
             std::array::from_fn(|k| {
                 let Control { from, to, .. } = controls[k];
-                (point[k] - from) / (to - from) * GRID[k] as f64 - 0.5
+                (point[k] - from) / (to - from) * GRID[k] as f64 - 0.5 - LOOKED_AT[k]
             })
         };
         for curve in curves {

@@ -2,7 +2,7 @@
 
 use serde_json::{Value, json};
 
-use super::{Charts, One};
+use super::{Charts, One, front};
 use crate::analysis::response::{ChartCurve, ChartPoint, Region};
 use crate::report::kinds;
 use crate::report::response::meaning::of_point;
@@ -36,6 +36,7 @@ fn scenario(one: &One<'_>) -> Value {
         "complete": super::is_complete(chart),
         "grid": chart.grid,
         "cells": chart.cells,
+        "front": front::data(one),
     })
 }
 

@@ -1,15 +1,18 @@
 //! The chart of two controls: regions of the same states, the curves of thresholds between them, and points on these.
 //!
-//! [`Charts`] has it all; `map` draws the regions in characters, `sheets` makes the tables, `csv` and `data` are for
+//! [`Charts`] has it all; `map` draws the regions in characters, `sheets` makes the tables, `front` has the best pairs of yields, `csv` and `data` are for
 //! spreadsheets and programs. All of it is numerical, but whether the search at the place inside a region was complete.
 //!
 //! The JSON of a scenario has the contract's keys, and after them `name`'s like of one control: `range`, a pair for each
 //! control; `present`; in a curve `states`, `bounds_stable` (point by point) and `closed`; in a point `meaning` and `error`; in
 //! a region `complete`; `cells`, the region of each cell of a grid over both ranges, row by row from the lowest, and `grid`,
-//! how many columns and rows it has.
+//! how many columns and rows it has; `front`, the best pairs of yields: `of`, two of `{"harvest", "species"}`; `points`, each
+//! `{"at", "yields", "state"}`, a pair of controls and one of yields in the order of `of`; `total`, the same of the largest
+//! sum with `sum`, or null; `whole`, false where the time was up; and `why` there are none, or null.
 
 mod csv;
 mod data;
+mod front;
 mod map;
 mod sheets;
 
@@ -23,7 +26,7 @@ use super::super::table::{Form, Page, Scene, Solved, Table, pretty, scene};
 use super::paper::{self, Part};
 use super::words::{name, unit};
 use super::{Chosen, glyphs};
-use crate::analysis::response::Chart;
+use crate::analysis::response::{Chart, Front, NoFront};
 use crate::model::ParameterId;
 
 /// Charts of some scenarios.
@@ -38,7 +41,16 @@ pub struct Charts<'r> {
     /// The fields of CSV.
     pub chosen: &'r Chosen,
     /// One a scenario shown; `None` for one that failed.
-    pub charts: &'r [Option<Chart>],
+    pub charts: &'r [Option<Charted>],
+}
+
+/// What was found of one scenario over both controls.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Charted {
+    /// Curves and regions.
+    pub chart: Chart,
+    /// Best pairs of yields, or why there are none.
+    pub front: Result<Front, NoFront>,
 }
 
 /// One scenario that did not fail.
@@ -48,6 +60,7 @@ struct One<'r> {
     scene: &'r Scene,
     solved: &'r Solved,
     chart: &'r Chart,
+    front: &'r Result<Front, NoFront>,
 }
 
 impl<'r> Charts<'r> {
@@ -55,7 +68,7 @@ impl<'r> Charts<'r> {
         let (table, charts) = (self.table, self.charts);
         table.scenes.iter().enumerate().map(move |(place, scene)| {
             let found = scene.outcome.as_ref().ok().zip(charts.get(place).and_then(Option::as_ref));
-            (scene, found.map(|(solved, chart)| One { table, scene, solved, chart }))
+            (scene, found.map(|(solved, Charted { chart, front })| One { table, scene, solved, chart, front }))
         })
     }
 
@@ -124,6 +137,8 @@ fn scenario<'r>(one: &One<'r>, form: Form, page: Page) -> Vec<Part<'r>> {
     parts.extend(headed("Points at which curves meet or change (numerical)", sheets::points(one)));
     parts.extend(sheets::points_said(one).into_iter().map(Part::Said));
     parts.extend(headed("Curves of thresholds between regions (numerical)", sheets::curves(one)));
+    parts.extend(one.front.iter().flat_map(|front| headed(front::HEADING, front::pairs(one, front))));
+    parts.extend(front::said(one).into_iter().map(Part::Said));
     parts
 }
 

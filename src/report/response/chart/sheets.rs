@@ -14,7 +14,7 @@ use crate::report::table::layout::{Align, Cell, Head, Ink};
 use crate::report::table::sheet::Sheet;
 use crate::report::table::words::{UNDECIDED, proof};
 
-fn control_heads(one: &One<'_>) -> [Head; 2] {
+pub(super) fn control_heads(one: &One<'_>) -> [Head; 2] {
     let model = one.table.model;
     one.chart.controls.map(|control| head(name(model, control.parameter), unit(model, control.parameter)))
 }
