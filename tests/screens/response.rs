@@ -1,8 +1,11 @@
 //! The response to a control: what is shown at each size, how the rule moves, what is picked, what is taken over, and what
 //! happens while branches are followed.
 
+use std::sync::Arc;
+
 use restpoint::app::response::{control, controls, picked, rule, states};
 use restpoint::app::{Answer, Effect, JobId, Msg, Screen, Study, Task};
+use restpoint::report::response::{Along, Reach};
 
 use crate::bench::{Bench, SIZES};
 use crate::texts::looks_as;
