@@ -6,8 +6,8 @@
 
 mod common;
 
-use std::cell::Cell;
 use std::path::Path;
+use std::sync::atomic::{AtomicBool, Ordering};
 use std::time::Instant;
 
 use common::{Contender, best, table};
@@ -54,10 +54,10 @@ fn main() {
         Contender::new("500 steps by hand, with types", STEPS, by_hand),
         Contender::new("branches with types and thresholds, a point", points, || {
             // Stopped when the branches are there.
-            let done = Cell::new(false);
-            let stop = || done.get();
+            let done = AtomicBool::new(false);
+            let stop = || done.load(Ordering::Relaxed);
             let budget = Budget { boxes: 20_000, stop: &stop, workers: &OneByOne, observer: None };
-            let mut told = |_: &Response| done.set(true);
+            let mut told = |_: &Response| done.store(true, Ordering::Relaxed);
             respond(&mut subject.clone(), &control, &list, &budget, &mut told).branches.len() as f64
         }),
         Contender::new("the whole picture, proved, a point", points, || {
