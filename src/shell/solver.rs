@@ -4,10 +4,10 @@ use crate::analysis::assess::assess;
 use crate::analysis::equilibria::{Budget, all};
 use crate::analysis::passage::{Found, Passage, Ways, identify};
 use crate::analysis::prepare::Prepared;
-use crate::analysis::response::{Control, Response, advise, band, chart, front, margins, respond};
+use crate::analysis::response::{Advice, Control, Margins, Response, advise, band, chart, front, margins, respond};
 use crate::model::{Model, ParameterId};
 use crate::report::response::chart::Charted;
-use crate::report::response::{Along, focus};
+use crate::report::response::{Along, Reach, focus};
 use crate::report::table::{Limits, Names, Scene, Solved};
 
 /// Boxes on one face.
@@ -28,25 +28,39 @@ pub fn scene(model: &Model, prepared: &Prepared, scenario: usize, budget: &Budge
 }
 
 /// Follows what was found in a scenario as a parameter varies over a range, and says what that means for catches and
-/// margins; `None` for a scenario that failed. `told` gets the picture so far.
+/// margins; `None` for a scenario that failed. `told` gets what is there before the rest, whose end is margins.
 pub fn along(
     model: &Model,
     prepared: &Prepared,
     scene: &Scene,
     (parameter, [from, to]): (ParameterId, [f64; 2]),
     budget: &Budget<'_>,
-    told: &mut dyn FnMut(&Response),
+    told: &mut dyn FnMut(Along),
 ) -> Option<Along> {
     let solved = scene.outcome.as_ref().ok()?;
     let mut subject = prepared.subject(model, scene.scenario).ok()?;
     let control = Control { parameter, from, to, present: *solved.values.get(parameter.0)? };
     let list = &solved.equilibria.list;
-    let response = respond(&mut subject, &control, list, budget, told);
-    let advice = advise(&mut subject, &response, budget.stop);
     let focus = focus(model, solved);
+    let response = respond(&mut subject, &control, list, budget, &mut |response| told(begun(response)));
+    let advice = advise(&mut subject, &response, budget.stop);
     let band = focus.and_then(|place| band(&response, list, place));
+    let advised = Along { reach: Reach::Advised, response, advice, focus, band, margins: Margins::default() };
+    told(advised.clone());
     let margins = focus.map(|place| margins(&mut subject, list, place, budget)).unwrap_or_default();
-    Some(Along { response, advice, focus, band, margins })
+    Some(Along { reach: Reach::Whole, margins, ..advised })
+}
+
+/// Branches alone.
+fn begun(response: &Response) -> Along {
+    Along {
+        reach: Reach::Branches,
+        response: response.clone(),
+        advice: Advice::default(),
+        focus: None,
+        band: None,
+        margins: Margins::default(),
+    }
 }
 
 /// The chart of two parameters over their ranges, across and upwards, and the best pairs of yields; `None` for a scenario that failed.

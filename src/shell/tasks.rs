@@ -8,7 +8,7 @@ use crate::analysis::equilibria::{Budget, Progress};
 use crate::analysis::passage::Ways;
 use crate::analysis::paths::{Ended, follow};
 use crate::analysis::prepare::Prepared;
-use crate::analysis::response::{Advice, Control, Margins, Response};
+use crate::analysis::response::Control;
 use crate::app::study::{TriedSet, World};
 use crate::app::task::{Compared, Found, Painting, Release};
 use crate::app::{Answer, Read, Source, Task};
@@ -161,14 +161,7 @@ fn responded(world: &World, scene: &Found, control: &Control, budget: f64, means
         workers: &means.threads,
         observer: None,
     };
-    let part = |response: &Response| Along {
-        response: response.clone(),
-        advice: Advice::default(),
-        focus: None,
-        band: None,
-        margins: Margins::default(),
-    };
-    let mut told = |response: &Response| (means.told)(Answer::Responded(Some(Arc::new(part(response)))));
+    let mut told = |part: Along| (means.told)(Answer::Responded(Some(Arc::new(part))));
     let varied = (control.parameter, [control.from, control.to]);
     along(&world.original.model, &world.prepared, &scene.0, varied, &budget, &mut told)
 }

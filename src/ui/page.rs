@@ -8,6 +8,7 @@ use crate::app::keymap::{Place, key_of, place};
 use crate::app::{Answer, App, Screen, Study};
 use crate::report::grid::Ink;
 use crate::report::progress::done;
+use crate::report::response::Reach;
 use unicode_width::UnicodeWidthStr;
 
 /// In place of all else where the terminal is too small.
@@ -74,6 +75,9 @@ pub(super) fn status(app: &App, page: &mut Page<'_>, area: Area) {
 /// How far branches are followed.
 fn following(job: &Job) -> String {
     let known = match &job.partly {
+        Some(Answer::Responded(Some(along))) if along.reach >= Reach::Advised => {
+            return "looking for the closest edge along other parameters; Esc stops it".to_owned();
+        }
         Some(Answer::Responded(Some(along))) => {
             let response = &along.response;
             let count =

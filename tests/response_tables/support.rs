@@ -9,7 +9,7 @@ use restpoint::analysis::response::{
 };
 use restpoint::model::{Model, ParameterId, SpeciesId};
 use restpoint::report::response::chart::{self, Charted, Charts};
-use restpoint::report::response::{Along, Chosen, FIELDS, Responses};
+use restpoint::report::response::{Along, Chosen, FIELDS, Reach, Responses};
 
 use crate::table_support::with_table_of;
 
@@ -110,7 +110,7 @@ pub(crate) fn along() -> Along {
         edges: [Edge::Threshold(0), Edge::Threshold(1)],
         thresholds: [Some(hopf), Some(fold)],
     };
-    Along { advice: advice(), focus: Some(1), margins: margins(&band), band: Some(band), response }
+    Along { reach: Reach::Whole, advice: advice(), focus: Some(1), margins: margins(&band), band: Some(band), response }
 }
 
 fn advice() -> Advice {
@@ -151,8 +151,14 @@ fn margins(band: &Band) -> Margins {
 
 /// Uses the responses of a model's three scenarios: that built by hand, an empty one, and none, where it failed.
 pub(crate) fn with_responses_of<T>(model: &Model, use_it: impl Fn(&Responses<'_>) -> T) -> T {
-    let bare =
-        Along { response: response(), advice: Advice::default(), focus: None, band: None, margins: Margins::default() };
+    let bare = Along {
+        reach: Reach::Whole,
+        response: response(),
+        advice: Advice::default(),
+        focus: None,
+        band: None,
+        margins: Margins::default(),
+    };
     let along = [Some(along()), Some(bare), None];
     let chosen = Chosen::all(&FIELDS);
     with_table_of(model, None, |table| {

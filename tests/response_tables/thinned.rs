@@ -1,7 +1,7 @@
 //! Files have fewer points of a branch than were followed, and straight lines between them still show it.
 
 use restpoint::analysis::linearise::Kind;
-use restpoint::analysis::response::{Advice, Margins, Point};
+use restpoint::report::response::{Along, Chosen, FIELDS, Reach, Responses, json};
 use restpoint::report::response::{Along, Chosen, FIELDS, Responses, json};
 use serde_json::Value;
 
@@ -22,7 +22,14 @@ fn written() -> Vec<Value> {
     let mut response = response();
     let points = (0..=STEPS).map(|k| round_the_fold(1.0 - 2.0 * f64::from(k) / f64::from(STEPS)));
     response.branches = vec![branch(points.collect(), [true, true], vec![0])];
-    let along = Along { response, advice: Advice::default(), focus: None, band: None, margins: Margins::default() };
+    let along = Along {
+        response,
+        advice: Advice::default(),
+        focus: None,
+        band: None,
+        margins: Margins::default(),
+        reach: Reach::Whole,
+    };
     let chosen = Chosen::all(&FIELDS);
     let json = with_table_of(&model(), None, |table| {
         let along = [Some(along.clone()), None, None];

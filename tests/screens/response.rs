@@ -1,8 +1,11 @@
 //! The response to a control: what is shown at each size, how the rule moves, what is picked, what is taken over, and what
 //! happens while branches are followed.
 
+use std::sync::Arc;
+
 use restpoint::app::response::{control, controls, picked, rule, states};
 use restpoint::app::{Answer, Effect, JobId, Msg, Screen, Study, Task};
+use restpoint::report::response::{Along, Reach};
 
 use crate::bench::{Bench, SIZES};
 use crate::texts::looks_as;
@@ -241,9 +244,14 @@ fn branches_fill_in_as_they_are_followed_and_can_be_stopped() {
     assert!(matches!(task, Task::Respond { .. }));
     assert!(words(&bench).contains("Every equilibrium is being followed as Q varies."), "{}", bench.text());
     assert_eq!(bench.status(), "following branches: nothing yet; Esc stops it");
-    bench.tell(Msg::Partly(id, Answer::Responded(Some(response.clone()))));
+    let reached = |reach| Answer::Responded(Some(Arc::new(Along { reach, ..(*response).clone() })));
+    bench.tell(Msg::Partly(id, reached(Reach::Branches)));
     assert!(words(&bench).contains("Branches are still being followed."), "{}", bench.text());
     assert!(bench.status().starts_with("following branches: 1 branch and "), "{}", bench.status());
+    // Nothing on this screen waits for the closest edge.
+    bench.tell(Msg::Partly(id, reached(Reach::Advised)));
+    assert!(!words(&bench).contains("still being followed"), "{}", bench.text());
+    assert_eq!(bench.status(), "looking for the closest edge along other parameters; Esc stops it");
     let effects = restpoint::app::update(&mut bench.app, Msg::Struck(restpoint::app::Key::Escape));
     assert!(matches!(effects[..], [Effect::Stop(stopped)] if stopped == id), "{effects:?}");
     bench.tell(Msg::Answered(id, Answer::Responded(Some(response))));

@@ -71,11 +71,19 @@ pub(super) fn closest(
     best
 }
 
+/// Whether more starts are worth their time: not once the expected number of local minima, found `seen` different ones from
+/// `starts` that led anywhere, is theirs (Boender & Rinnooy Kan 1987). Starts along parameters count as if they were drawn.
+fn is_enough(seen: usize, starts: usize) -> bool {
+    let (w, n) = (seen as f64, starts as f64);
+    n > w + 2.0 && w * (n - 1.0) / (n - w - 2.0) < w + 0.5
+}
+
 /// The least distance found, and how many starts led to it; the last `added` of the movers are 0 at present.
 fn least(setting: &mut Setting<'_>, added: usize) -> Option<(Least, usize)> {
     let mut found: Vec<(Least, usize)> = Vec::new();
     for direction in starts(setting.movers.len(), added) {
-        if (setting.stop)() {
+        let led: usize = found.iter().map(|(_, count)| count).sum();
+        if (setting.stop)() || is_enough(found.len(), led) {
             break;
         }
         let Some(new) = descend(setting, direction) else { continue };

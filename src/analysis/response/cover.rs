@@ -12,13 +12,14 @@ use super::{Gap, GapReason};
 use crate::expr::tape::Tape;
 use crate::expr::tape::gradient::GradientRun;
 use crate::expr::tape::number::Domain;
+use crate::expr::tape::run::Run;
 use crate::num::dense::inverse;
 use crate::num::interval::Interval;
 
 /// Species beyond which faces are too many, and parts too.
 const MOST_SPECIES: usize = 6;
-/// Parts looked at, on all faces together.
-const MOST_PARTS: usize = 12_000;
+/// Parts looked at, on all faces together: where this is not enough, twice as many have not been either.
+const MOST_PARTS: usize = 6_000;
 /// A part is not cut further when each side is this share of the whole.
 const SMALLEST: f64 = 1e-6;
 /// Newton steps to the curve in the middle of a part.
@@ -71,6 +72,8 @@ struct Cover<'t> {
     face: &'t Face,
     numbers: GradientRun<'t, f64>,
     intervals: GradientRun<'t, Interval>,
+    /// The same without slopes, which most parts do not need.
+    plain: Run<'t, Interval>,
     whole: Part,
     gaps: Vec<Gap>,
 }
@@ -95,6 +98,7 @@ impl<'t> Cover<'t> {
             face,
             numbers: rows.start_gradient(&picture.equations.values),
             intervals: rows.start_gradient(&exact),
+            plain: rows.start(&exact),
             whole: face.moving.iter().map(side).chain([range]).collect(),
             gaps: Vec::new(),
         }
@@ -164,10 +168,11 @@ impl<'t> Cover<'t> {
 
     fn look_at(&mut self, part: &[Interval]) -> Verdict {
         let (m, n) = (self.m(), self.m() + 1);
-        let domain = self.intervals.at(part);
-        if (0..m).any(|i| !self.intervals.output(i).contains_zero()) {
+        self.plain.at(part);
+        if self.plain.outputs().any(|row| !row.contains_zero()) {
             return Verdict::Empty;
         }
+        let domain = self.intervals.at(part);
         let slopes = self.slopes(m);
         let along = steepest(&slopes, part, n);
         let open = Verdict::Open { domain, along };
@@ -195,13 +200,15 @@ impl<'t> Cover<'t> {
     /// Whether a row's mean value form has no zero: F(c) + F'(X)(X − c).
     fn is_empty_around(&mut self, part: &[Interval], middle: &[f64], slopes: &[Interval]) -> bool {
         let exact: Part = middle.iter().map(|&x| Interval::point(x)).collect();
-        if !self.intervals.at(&exact).defined {
+        if !self.plain.at(&exact).defined {
             return false;
         }
-        slopes.chunks_exact(part.len()).enumerate().any(|(i, row)| {
-            let reach = row.iter().zip(part).zip(middle).fold(*self.intervals.output(i), |sum, ((slope, side), &x)| {
-                sum + *slope * (*side - Interval::point(x))
-            });
+        slopes.chunks_exact(part.len()).zip(self.plain.outputs()).any(|(row, &value)| {
+            let reach = row
+                .iter()
+                .zip(part)
+                .zip(middle)
+                .fold(value, |sum, ((slope, side), &x)| sum + *slope * (*side - Interval::point(x)));
             !reach.contains_zero()
         })
     }
@@ -307,10 +314,10 @@ impl<'t> Cover<'t> {
     ) -> Option<Vec<Interval>> {
         let m = others.len();
         let exact: Part = point.iter().map(|&x| Interval::point(x)).collect();
-        if !self.intervals.at(&exact).defined {
+        if !self.plain.at(&exact).defined {
             return None;
         }
-        let values: Vec<Interval> = (0..m).map(|i| *self.intervals.output(i)).collect();
+        let values: Vec<Interval> = self.plain.outputs().copied().collect();
         let mut slice = exact.clone();
         slice[z] = tube[z];
         if !self.intervals.at(&slice).defined {

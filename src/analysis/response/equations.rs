@@ -99,7 +99,7 @@ impl Equations {
             let known = restricted(&mut self.graph, &self.balance, &moves);
             let fed: Vec<usize> = (0..self.species).filter(|&i| !moves[i] && known[i] != zero).collect();
             if fed.is_empty() {
-                return self.with_rows(moves, &known);
+                return self.with_rows(&moves, &known);
             }
             for i in fed {
                 moves[i] = true;
@@ -108,10 +108,10 @@ impl Equations {
         None
     }
 
-    fn with_rows(&mut self, moves: Vec<bool>, known: &[AtZero]) -> Option<Face> {
+    fn with_rows(&mut self, moves: &[bool], known: &[AtZero]) -> Option<Face> {
         let moving: Vec<usize> = (0..self.species).filter(|&i| moves[i]).collect();
         let quotients: Vec<NodeId> = moving.iter().filter_map(|&i| self.divided[i]).collect();
-        let mut quotients = restricted(&mut self.graph, &quotients, &moves).into_iter();
+        let mut quotients = restricted(&mut self.graph, &quotients, moves).into_iter();
         let mut rows = Vec::with_capacity(moving.len());
         let mut is_divided = Vec::with_capacity(moving.len());
         for &i in &moving {

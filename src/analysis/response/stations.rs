@@ -55,7 +55,7 @@ pub(super) fn visit(
     let mut stations: Vec<Station> = Vec::new();
     let mut boxes = 0;
     for at in places(picture, count) {
-        if boxes >= MOST_BOXES || (budget.stop)() {
+        if boxes >= MOST_BOXES.min(budget.boxes) || (budget.stop)() {
             break;
         }
         let Some((list, complete, taken)) = search(subject, picture.control.parameter.0, at, budget) else { continue };

@@ -24,8 +24,9 @@ const LONGEST_STEP: f64 = 0.2;
 /// Share of the range, and of the largest abundance so far, that no step exceeds: what a plot can show.
 const SHOWN: [f64; 2] = [0.009, 0.03];
 /// The same for communities of more than [`LARGE`] who move, of which one point takes long.
-const SHOWN_LARGE: [f64; 2] = [0.02, 0.06];
-const LARGE: usize = 8;
+const SHOWN_LARGE: [f64; 2] = [0.03, 0.1];
+/// In these only thresholds of stable states are looked for.
+pub(super) const LARGE: usize = 8;
 /// A step that would have to be shorter meets something that no step gets over.
 const SHORTEST_STEP: f64 = 1e-7;
 /// At steps shorter than this branches that seem to cross do.
@@ -39,6 +40,8 @@ const LEAST_SCALE: f64 = 0.05;
 /// A branch is left where an abundance is this share of the largest so far below 0, or this many times the box's side above.
 const BELOW: f64 = 1.0;
 const ABOVE: f64 = 2.0;
+/// The same share for such communities: beyond, each branch meets others that nobody can have.
+const BELOW_LARGE: f64 = 0.02;
 
 /// A point of a walk.
 #[derive(Clone, Debug)]
@@ -292,10 +295,11 @@ impl<'w, 'p> Walk<'w, 'p> {
     }
 
     fn is_far(&self) -> bool {
+        let below = if self.m() > LARGE { BELOW_LARGE } else { BELOW };
         let parts = self.here.at.iter().zip(self.ground.sides).zip(&self.peaks);
         parts.into_iter().any(|((&x, side), &peak)| {
             let reach = (side[1] - side[0]).abs();
-            x < (-BELOW * peak).max(-0.1 * reach).min(-1e-3 * reach) || x > side[1] + (ABOVE - 1.0) * reach
+            x < (-below * peak).max(-0.1 * reach).min(-1e-3 * reach) || x > side[1] + (ABOVE - 1.0) * reach
         })
     }
 

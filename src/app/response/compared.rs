@@ -8,7 +8,7 @@ use crate::analysis::response::{Edge, band};
 use crate::app::{App, Study};
 use crate::model::Model;
 use crate::report::response::words::{kind, taking, unit};
-use crate::report::response::{Along, spoken_of};
+use crate::report::response::{Along, Reach, spoken_of};
 use crate::report::table::human;
 
 /// One quantity in every scenario.
@@ -29,7 +29,7 @@ pub fn compared(app: &App, study: &Study, slots: &[usize], name: &str) -> Vec<Ro
     let all: Vec<Option<(&Arc<Along>, bool)>> = slots.iter().map(|&slot| along_in(app, study, slot)).collect();
     let each = |cell: &dyn Fn(usize, &Along) -> Option<String>| -> Vec<String> {
         let one = |(&slot, known): (&usize, &Option<(&Arc<Along>, bool)>)| match known {
-            Some((along, true)) => cell(slot, along).unwrap_or_default(),
+            Some((along, _)) if along.reach >= Reach::Advised => cell(slot, along).unwrap_or_default(),
             _ if study.slots.get(slot).is_some_and(|slot| slot.solved().is_none()) => String::new(),
             _ => WAIT.to_owned(),
         };
@@ -44,7 +44,7 @@ pub fn compared(app: &App, study: &Study, slots: &[usize], name: &str) -> Vec<Ro
         },
         Row { label: "how lost".to_owned(), cells: each(&|slot, along| how(study, slot, along, name)) },
     ];
-    let first = all.iter().flatten().find(|(_, is_whole)| *is_whole).map(|(along, _)| *along);
+    let first = all.iter().flatten().find(|(along, _)| along.reach >= Reach::Advised).map(|(along, _)| *along);
     for label in first.map_or_else(Vec::new, |along| labels(study.model(), along)) {
         let cell = |_: usize, along: &Along| yielded(study.model(), along, &label);
         rows.push(Row { cells: each(&cell), label: label.clone() });

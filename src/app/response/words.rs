@@ -7,7 +7,7 @@ use crate::model::{Model, ParameterId};
 use crate::report::kinds;
 use crate::report::response::plot::{mark, marked, stays};
 use crate::report::response::words::{kind, setting, unit, with_unit};
-use crate::report::response::{Setting, advised, meaning};
+use crate::report::response::{Reach, Setting, advised, meaning};
 use crate::report::table::human;
 
 /// Species that a line names.
@@ -23,7 +23,9 @@ pub fn sentence(app: &App, study: &Study) -> String {
         return format!("{place}. Every equilibrium is being followed as {} varies.", one.name);
     };
     let response = &along.response;
-    let so_far = if is_whole { "" } else { "Branches are still being followed. " };
+    // Nothing that is said here waits for margins.
+    let is_there = is_whole || along.reach >= Reach::Advised;
+    let so_far = if is_there { "" } else { "Branches are still being followed. " };
     let Some(state) = picked(app, study) else {
         return format!("{so_far}At {place} no equilibrium is known.");
     };

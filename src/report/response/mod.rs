@@ -66,9 +66,22 @@ pub struct Responses<'r> {
     pub along: &'r [Option<Along>],
 }
 
+/// How much of it is worked out.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord)]
+pub enum Reach {
+    /// Branches through the present states, and what crosses them; no search has looked for others.
+    Branches,
+    /// All but margins.
+    Advised,
+    /// All.
+    Whole,
+}
+
 /// What was found of one scenario along the control.
 #[derive(Clone, Debug, PartialEq)]
 pub struct Along {
+    /// How much of it is there.
+    pub reach: Reach,
     /// Branches and thresholds.
     pub response: Response,
     /// Yields, removal, open access.

@@ -9,7 +9,7 @@ use crate::analysis::response::curve::{Curve, Sample};
 use crate::analysis::response::locate::{self, Located};
 use crate::analysis::response::piece::Piece;
 use crate::analysis::response::switch::Meaning;
-use crate::analysis::response::walk::Event;
+use crate::analysis::response::walk::{Event, LARGE};
 use crate::analysis::response::{Threshold, ThresholdKind};
 use crate::model::SpeciesId;
 
@@ -18,9 +18,6 @@ const SAME: [f64; 2] = [1e-6, 1e-4];
 
 /// A defining system's root further than this share of the range from where an event was bracketed is another's.
 const HERE: f64 = 1e-5;
-/// Beyond so many species only thresholds of stable states are looked for and followed: each of the others meets as many
-/// again.
-const LARGE: usize = 8;
 /// An eigenvalue this near to the border, as a share of the largest, is critical at a threshold.
 const CRITICAL: f64 = 1e-5;
 
@@ -41,6 +38,7 @@ impl Picture<'_> {
         if !self.is_feasible(&state) {
             return None;
         }
+        // Each of the others meets as many again.
         if self.equations.species > LARGE && !self.bounds_stable(event) {
             return None;
         }

@@ -6,7 +6,7 @@
 
 use nalgebra::Complex;
 
-use super::{Change, End, Event, Node, Sample, Walk, distance};
+use super::{Change, End, Event, LARGE, Node, Sample, Walk, distance};
 use crate::analysis::passage::locate::crossing;
 use crate::analysis::response::curve::normalise;
 use crate::analysis::response::events;
@@ -15,6 +15,8 @@ use crate::analysis::response::events;
 pub(super) const TIGHT: f64 = 2e-6;
 /// Events within events.
 pub(super) const DEEPEST: usize = 12;
+/// A state this share of the box outside of it is so by more than rounding.
+const OUTSIDE: f64 = 1e-6;
 /// Halvings for an event that is only counted.
 const HALVINGS: usize = 40;
 
@@ -36,6 +38,9 @@ impl Walk<'_, '_> {
         let mut found = Vec::new();
         events::changes(self.curve.piece, self.ground.sides, before, after, &mut found);
         let Some(&change) = found.first() else { return };
+        if found.len() == 1 && self.is_of_no_account(before, after) {
+            return;
+        }
         let length = distance(&before.at, &after.at, &self.curve.scale);
         let is_tight = length <= 4.0 * TIGHT || depth == 0;
         let (share, point) = if is_tight { (0.5, None) } else { self.located(change, before, after) };
@@ -69,6 +74,23 @@ impl Walk<'_, '_> {
         if let Some(right) = &right {
             self.inspect(right, after, depth - 1);
         }
+    }
+
+    /// Whether one change between two points is not worth locating, as no threshold comes of it: none of them is a state that
+    /// can be, or in a large community neither is stable. Where several things change a state between them may be.
+    fn is_of_no_account(&self, before: &Sample, after: &Sample) -> bool {
+        let sides = self.ground.sides;
+        let cannot_be = |sample: &Sample| {
+            let beyond = |(&x, side): (&f64, &[f64; 2])| {
+                let room = OUTSIDE * side[1].abs();
+                x < side[0] - room || x > side[1] + room
+            };
+            sample.at.iter().zip(sides).any(beyond)
+        };
+        let repels = |sample: &Sample| sample.typed.light.is_some_and(|light| light.stable == Some(false));
+        let is_large = self.curve.piece.present.len() > LARGE;
+        let ends = [before, after];
+        ends.into_iter().all(cannot_be) || (is_large && ends.into_iter().all(repels))
     }
 
     /// Between two events there is a point, to tell what the branch is like there.
