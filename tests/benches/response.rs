@@ -142,8 +142,14 @@ fn parts(model: &Model, prepared: &Prepared, scenario: usize) -> Option<([f64; 6
         gaps = response.gaps.len();
         // Margins have bands of their own.
         let closest = (marks[3] - marks[2]) - (marks[2] - marks[1]);
-        let row =
-            [told[0], marks[0], marks[1] - marks[0], marks[2] - marks[1], closest, marks[3] - marks[2] + marks[1]];
+        let row = [
+            *told.last()?,
+            marks[0],
+            marks[1] - marks[0],
+            marks[2] - marks[1],
+            closest,
+            marks[3] - marks[2] + marks[1],
+        ];
         best.iter_mut().zip(row).for_each(|(best, time)| *best = best.min(time));
     }
     Some((best, gaps))

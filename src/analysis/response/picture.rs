@@ -93,12 +93,16 @@ impl<'e> Picture<'e> {
 
     /// Follows everything that is waiting, and what it leads to.
     pub(super) fn follow_all(&mut self) {
-        let mut followed = 0;
-        while let Some(start) = self.starts.pop_front() {
-            followed += 1;
-            if (self.stop)() || self.branches.len() >= MOST_BRANCHES || followed > 8 * MOST_BRANCHES {
+        self.follow_first(8 * MOST_BRANCHES);
+    }
+
+    /// The same for so many starts, those that waited longest.
+    pub(super) fn follow_first(&mut self, count: usize) {
+        for _ in 0..count {
+            if (self.stop)() || self.branches.len() >= MOST_BRANCHES {
                 return;
             }
+            let Some(start) = self.starts.pop_front() else { return };
             self.follow(&start);
         }
     }

@@ -43,13 +43,21 @@ pub fn respond(
         stations::search(subject, control.parameter.0, nearer, budget)
             .map_or_else(VecDeque::new, |f| starts(&f.0, nearer))
     };
+    let so_far = |picture: &mut Picture<'_>| Response {
+        undefined: undefined.clone(),
+        gaps: vec![Gap { from: control.from, to: control.to, reason: GapReason::Budget }],
+        ..picture.response(present)
+    };
+    if subject.species() > stations::LARGE {
+        // What crosses these may take long.
+        picture.follow_first(picture.starts.len());
+        told(&so_far(&mut picture));
+    }
     picture.follow_all();
-    let mut so_far = Response { undefined, ..picture.response(present) };
-    so_far.gaps = vec![Gap { from: control.from, to: control.to, reason: GapReason::Budget }];
-    told(&so_far);
+    told(&so_far(&mut picture));
     let mut gaps = super::cover::cover(&mut picture, budget.boxes);
     let stations = stations::visit(&mut picture, subject, budget, &mut gaps);
-    Response { gaps, stations, undefined: so_far.undefined, ..picture.response(present) }
+    Response { stations, gaps, undefined, ..picture.response(present) }
 }
 
 fn starts(list: &[Equilibrium], control: f64) -> VecDeque<Start> {

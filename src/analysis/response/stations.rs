@@ -17,7 +17,7 @@ const MANY: usize = 17;
 /// Boxes after which no further station is begun.
 const MOST_BOXES: usize = 30_000;
 /// Species beyond which one search takes long, and stations are few.
-const LARGE: usize = 8;
+pub(super) const LARGE: usize = 8;
 
 /// The equilibria of the scenario at a value of the control, whether it is proved that there are no others in the box, and
 /// the boxes that it took. `None` where there are no equations for that value.
