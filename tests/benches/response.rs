@@ -93,13 +93,14 @@ fn shipped() {
         for scenario in 0..original.model.scenarios.len() {
             let Some((row, gaps)) = parts(&original.model, &prepared, scenario) else { continue };
             let name = format!("{}: {}", file.file_stem().unwrap().display(), original.model.scenarios[scenario].name);
-            let cells: String = row.iter().map(|time| format!(" {time:>9.2}")).collect();
+            let cells = row.iter().map(|time| format!(" {time:>9.2}")).collect::<Vec<_>>().concat();
             println!("  {name:<44}{cells}  {gaps} gaps");
             rows.push(row);
         }
     }
     for (name, place) in [("median", rows.len() / 2), ("worst", rows.len() - 1)] {
-        let cells: String = (0..PARTS.len()).map(|part| format!(" {:>9.2}", sorted(&rows, part)[place])).collect();
+        let of_part = |part| format!(" {:>9.2}", sorted(&rows, part)[place]);
+        let cells = (0..PARTS.len()).map(of_part).collect::<Vec<_>>().concat();
         println!("  {name:<44}{cells}");
     }
 }
