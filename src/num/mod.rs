@@ -9,24 +9,35 @@
 //! matrices share. To add a function, give its scalar form in [`elementary`], its enclosure in [`interval`], and rows of
 //! references to `tests/data/interval_references.py`.
 
+pub mod beta;
 pub mod chi_square;
 pub mod complementarity;
+pub mod correlation;
 pub mod dense;
 pub mod double;
 pub mod eigen;
 pub mod elementary;
 pub mod exponential;
+pub mod gamma;
 pub mod interval;
 pub mod lyapunov;
+pub mod normal;
 pub mod ode;
+pub mod permutation;
+pub mod philox;
 pub mod quadratic;
+pub mod quantiles;
 pub mod quotient;
 pub mod random;
+pub mod ranks;
 pub mod rapid;
 pub mod round;
 pub mod singular;
+pub mod sobol;
 pub mod solve;
 pub mod stationary;
+pub mod student;
+pub mod sum;
 pub mod transient;
 pub mod verified;
 pub mod wide;
