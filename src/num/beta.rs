@@ -219,7 +219,7 @@ fn logit_deviation(a: f64, b: f64, x: f64, y: f64) -> f64 {
 /// 1/(a (1 + d₁/(1 + d₂/(1 + …)))), which converges fast for x < (a + 1)/(a + b + 2) (Abramowitz & Stegun 1964, 26.5.8), by
 /// Lentz's method (Thompson & Barnett 1986).
 fn fraction(a: f64, b: f64, x: f64) -> Option<f64> {
-    let (mut value, mut c, mut d) = (1.0, 1.0, 1.0);
+    let (mut value, mut c, mut d) = (1.0, 1.0, 0.0);
     for k in 1..=TERMS {
         let m = (k / 2) as f64;
         let place = a + k as f64;

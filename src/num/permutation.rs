@@ -3,20 +3,30 @@
 //! Memory does not grow with n, and two who know the key agree on every place: what a Latin hypercube of any size, made in
 //! parts, needs.
 
+use super::random::Source;
+
 /// Four give a good cipher of large halves (Luby & Rackoff 1988); halves of a few bits need more to mix.
 const ROUNDS: u64 = 8;
 
-/// A random order of 0 … n−1.
-///
-/// A Feistel network over the smallest power of two that holds n, which permutes it whatever its rounds do; from a value
-/// of n or more it is followed on until it is below n (Black & Rogaway 2002), fewer than twice on average. The orders of
-/// all n up to 4 occur; of more, a number of orders bounded by the number of keys.
-#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+/// Orders of up to so many places are written out: a network over a few bits would reach some orders more often.
+const MOST_WRITTEN: u64 = 1 << 10;
+
+/// A random order of 0 … n−1; a few kilobytes at most.
+#[derive(Clone, Debug, PartialEq, Eq)]
 pub struct Permutation {
     key: u64,
     size: u64,
-    /// Bits of the high half and of the low half.
-    halves: [u32; 2],
+    form: Form,
+}
+
+#[derive(Clone, Debug, PartialEq, Eq)]
+enum Form {
+    /// Shuffled (Durstenfeld 1964); all orders are as likely.
+    Written(Box<[u16]>),
+    /// A Feistel network over the smallest power of two that holds n, which permutes it whatever its rounds do; from a
+    /// value of n or more it is followed on until it is below n (Black & Rogaway 2002), fewer than twice on average. Bits
+    /// of the high half and of the low half.
+    Network([u32; 2]),
 }
 
 impl Permutation {
@@ -28,20 +38,32 @@ impl Permutation {
     pub fn new(key: u64, size: u64) -> Self {
         assert!(size <= 1 << 63, "a permutation of {size}");
         let bits = u64::BITS - size.saturating_sub(1).leading_zeros();
-        Self { key, size, halves: [bits / 2, bits - bits / 2] }
+        let form = if size <= MOST_WRITTEN {
+            Form::Written(shuffled(key, size as u16))
+        } else {
+            Form::Network([bits / 2, bits - bits / 2])
+        };
+        Self { key, size, form }
     }
 
     /// Where `index` goes, for index < size; any other index is taken modulo size. 0 of nothing is 0.
     #[must_use]
     pub fn at(&self, index: u64) -> u64 {
-        if self.size <= 1 {
+        if self.size == 0 {
             return 0;
         }
-        let mut value = index % self.size;
+        let index = index % self.size;
+        match &self.form {
+            Form::Written(order) => u64::from(order[index as usize]),
+            Form::Network(halves) => self.followed(index, *halves),
+        }
+    }
+
+    fn followed(&self, mut value: u64, halves: [u32; 2]) -> u64 {
         // A cycle of the network meets every value of n or more at most once before it comes back below n.
-        let beyond = (1u64 << (self.halves[0] + self.halves[1])) - self.size;
+        let beyond = (1u64 << (halves[0] + halves[1])) - self.size;
         for _ in 0..=beyond {
-            value = self.network(value);
+            value = self.network(value, halves);
             if value < self.size {
                 break;
             }
@@ -49,8 +71,7 @@ impl Permutation {
         value
     }
 
-    fn network(&self, value: u64) -> u64 {
-        let [high_bits, low_bits] = self.halves;
+    fn network(&self, value: u64, [high_bits, low_bits]: [u32; 2]) -> u64 {
         let (mut high, mut low) = (value >> low_bits, value & mask(low_bits));
         for round in 0..ROUNDS / 2 {
             high ^= mixed(low, self.key, 2 * round) & mask(high_bits);
@@ -58,6 +79,16 @@ impl Permutation {
         }
         high << low_bits | low
     }
+}
+
+fn shuffled(key: u64, size: u16) -> Box<[u16]> {
+    let mut source = Source::new(key);
+    let mut order: Vec<u16> = (0..size).collect();
+    for last in (1..order.len()).rev() {
+        // 2^64 is not a multiple of the places, which favours some by one in 10^16.
+        order.swap(last, (source.bits() % (last as u64 + 1)) as usize);
+    }
+    order.into()
 }
 
 fn mask(bits: u32) -> u64 {
