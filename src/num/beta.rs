@@ -9,14 +9,15 @@ use super::elementary::{exp, expm1, ln, log1p};
 use super::gamma::{excess, ln_gamma, stirling_rest};
 use super::normal;
 
-/// A fraction takes about √max(a, b) terms; with more than these the shapes are taken for infinitely large.
-const TERMS: usize = 40_000;
+/// A fraction takes about √min(a, b) terms; with more than these the shapes are taken for infinitely large.
+const TERMS: usize = 4_000;
 /// Above this, gamma functions are differences of large numbers, and Stirling's formula is taken out of them.
 const LARGE: f64 = 10.0;
 /// Newton's steps, each within the bracket that halves at the worst.
 const STEPS: usize = 200;
-/// So near in relative terms two successive values of x are taken for one.
-const SAME: f64 = 4e-16;
+/// A step in the logit that is rounding alone; one this small that is no smaller than the last is, too.
+const ROUNDING: f64 = 1e-15;
+const NEAR: f64 = 1e-9;
 const TINY: f64 = 1e-290;
 /// ln of the smallest number above 0.
 const LN_SMALLEST: f64 = -745.2;
@@ -62,11 +63,11 @@ impl Beta {
         Self { a, b, ln_function: ln_beta_function(a, b), rest }
     }
 
-    /// Both shares at x: the regularised incomplete beta function I_x(a, b) and 1 − I_x, each to a relative error of about
-    /// 1e-14, more where a shape is above 1e6.
+    /// Both shares at x: the regularised incomplete beta function I_x(a, b) and 1 − I_x, each to a relative error of 2e-13;
+    /// the smaller one to 4e-15 of the larger where that is more, as it is of shapes far below 1.
     ///
     /// By a continued fraction on the side where it converges. Of shapes so large that it does not end, by the normal
-    /// distribution of the logit, which errs by some 1e-5 standard deviations there.
+    /// distribution of the logit, which errs by some 1e-3 standard deviations there, or 1e-6 of x.
     #[must_use]
     pub fn shares(&self, x: f64) -> Shares {
         if x <= 0.0 || x >= 1.0 {
@@ -77,26 +78,27 @@ impl Beta {
                 Shares { ln_below: all, ln_above: none }
             };
         }
-        self.shares_at(x, 1.0 - x)
+        self.shares_at(x, 1.0 - x).unwrap_or_else(|| {
+            let deviation = (ln(x / (1.0 - x)) - ln(self.a / self.b)) / self.logit_sd();
+            Shares { ln_below: normal::ln_share(deviation), ln_above: normal::ln_share(-deviation) }
+        })
     }
 
-    fn shares_at(&self, x: f64, y: f64) -> Shares {
+    /// Both shares at x, y = 1 − x; `None` where the fraction does not end.
+    fn shares_at(&self, x: f64, y: f64) -> Option<Shares> {
         let (a, b) = (self.a, self.b);
         if x < (a + 1.0) / (a + b + 2.0) {
-            let below = self.tail(a, b, x, y);
-            Shares { ln_below: below, ln_above: ln_rest(below) }
+            let below = self.ln_power(x, y, a, b) + ln(fraction(a, b, x)?);
+            Some(Shares { ln_below: below, ln_above: ln_rest(below) })
         } else {
-            let above = self.tail(b, a, y, x);
-            Shares { ln_below: ln_rest(above), ln_above: above }
+            let above = self.ln_power(y, x, b, a) + ln(fraction(b, a, y)?);
+            Some(Shares { ln_below: ln_rest(above), ln_above: above })
         }
     }
 
-    /// ln I_x(a, b) for x up to about the mean, y = 1 − x.
-    fn tail(&self, a: f64, b: f64, x: f64, y: f64) -> f64 {
-        match fraction(a, b, x) {
-            Some(fraction) => self.ln_power(x, y, a, b) + ln(fraction),
-            None => normal::ln_share(logit_deviation(a, b, x, y)),
-        }
+    /// The standard deviation of ln(x/(1 − x)), both shapes being large.
+    fn logit_sd(&self) -> f64 {
+        (1.0 / self.a + 1.0 / self.b).sqrt()
     }
 
     /// ln(x^a y^b/B(a, b)); symmetric in the two sides.
@@ -112,48 +114,57 @@ impl Beta {
         0.5 * ln(a * other / (2.0 * PI)) - away + self.rest
     }
 
-    /// The x that a share lies below, or above; in [0, 1], relative error about 1e-13, also of 1 − x by [`Side::Above`]
-    /// with the shapes exchanged. Where x is too near 0 or 1 to be told from it, it is 0 or 1.
+    /// The x that a share lies below, or above; in [0, 1], relative error about 1e-13. Where x is too near 0 or 1 to be told
+    /// from it, it is 0 or 1.
     ///
     /// Newton's method on the logarithm of the smaller share over the logit of x, kept within a bracket.
     #[must_use]
     pub fn quantile(&self, side: Side) -> f64 {
         let mirrored = Self { a: self.b, b: self.a, ..*self };
         match side {
-            Side::Below(share) if share <= -LN_2 => self.solve(share),
-            Side::Above(share) if share <= -LN_2 => 1.0 - mirrored.solve(share),
-            Side::Below(share) => 1.0 - mirrored.solve(ln_rest(share)),
-            Side::Above(share) => self.solve(ln_rest(share)),
+            Side::Below(share) if share <= -LN_2 => self.solve(share).0,
+            Side::Above(share) if share <= -LN_2 => mirrored.solve(share).1,
+            Side::Below(share) => mirrored.solve(ln_rest(share)).1,
+            Side::Above(share) => self.solve(ln_rest(share)).0,
         }
     }
 
-    /// The x with at most half of the distribution below it, ln share given.
-    fn solve(&self, share: f64) -> f64 {
+    /// The x, and 1 − x, with at most half of the distribution below it, ln share given.
+    fn solve(&self, share: f64) -> (f64, f64) {
         // Below the smallest f64 the power law of the lower end is exact.
-        if !(self.lower_end(share) >= LN_SMALLEST) {
-            return 0.0;
+        let end = self.lower_end(share);
+        if end.is_nan() || end < LN_SMALLEST {
+            return (0.0, 1.0);
         }
         let (mut low, mut high) = (f64::NEG_INFINITY, f64::INFINITY);
-        let mut at = self.start(share);
+        let (mut at, mut last) = (self.start(share), f64::INFINITY);
         for _ in 0..STEPS {
             let (x, y) = sides(at);
-            let found = self.shares_at(x, y).ln_below;
-            let error = found - share;
+            let Some(found) = self.shares_at(x, y) else {
+                return sides(self.of_normal(share));
+            };
+            let error = found.ln_below - share;
             if error > 0.0 {
-                high = at
+                high = at;
             } else {
-                low = at
+                low = at;
             }
             // d ln I/d logit x = x^a y^b/(B I).
-            let slope = exp(self.ln_power(x, y, self.a, self.b) - found);
+            let slope = exp(self.ln_power(x, y, self.a, self.b) - found.ln_below);
             let next = within(at - error / slope, at, low, high);
-            let step = next - at;
+            let step = (next - at).abs();
             at = next;
-            if step.abs() * y <= SAME || step.abs() <= SAME * at.abs() {
+            if step <= ROUNDING * at.abs().max(1.0) || (step < NEAR && step >= last) {
                 break;
             }
+            last = step;
         }
-        sides(at).0
+        sides(at)
+    }
+
+    /// The logit below which a share lies, both shapes being large.
+    fn of_normal(&self, share: f64) -> f64 {
+        ln(self.a / self.b) + normal::of_ln_share(share) * self.logit_sd()
     }
 
     /// ln x by the power law of the lower end, I_x = x^a/(a B).
@@ -168,7 +179,7 @@ impl Beta {
         if end < -1.0 && a.min(b) < LARGE {
             return end;
         }
-        ln(a / b) + normal::of_ln_share(share) * (1.0 / a + 1.0 / b).sqrt()
+        self.of_normal(share)
     }
 }
 
@@ -207,11 +218,6 @@ fn within(proposed: f64, at: f64, low: f64, high: f64) -> f64 {
         (true, false) => at + 1.0 + at.abs(),
         _ => at - 1.0 - at.abs(),
     }
-}
-
-/// How far x lies from the mean of the logit, in standard deviations, both shapes being huge.
-fn logit_deviation(a: f64, b: f64, x: f64, y: f64) -> f64 {
-    (ln(x / y) - ln(a / b)) / (1.0 / a + 1.0 / b).sqrt()
 }
 
 /// The continued fraction that I_x = x^a y^b/B × it; `None` where it does not end in time.

@@ -43,12 +43,12 @@ pub fn factor(entries: &[f64], n: usize) -> Option<Vec<f64>> {
         for i in j + 1..n {
             let rest = entries[i * n + j] - dot(&l, i);
             // A variable that has nothing of its own can share nothing of its own.
-            if root == 0.0 && !(rest.abs() <= ROUNDING.sqrt()) {
+            if root == 0.0 && (rest.is_nan() || rest.abs() > ROUNDING.sqrt()) {
                 return None;
             }
             l[i * n + j] = if root > 0.0 { rest / root } else { 0.0 };
         }
-        if !(pivot >= -ROUNDING) {
+        if pivot.is_nan() || pivot < -ROUNDING {
             return None;
         }
         l[j * n + j] = root;

@@ -85,6 +85,7 @@ pub fn of_ln_share(logarithm: f64) -> f64 {
 /// density(z)/(share above z) for z > 0: z + 1/(z + 2/(z + 3/(z + …))).
 ///
 /// n terms leave about e^(−2 z √n) of it where z is small, much less where it is not: always less than 1e-17.
+#[expect(clippy::cast_sign_loss, reason = "a square is not negative")]
 fn fraction(z: f64) -> f64 {
     let terms = 24 + (400.0 / (z * z)) as u32;
     (1..=terms).rev().fold(z, |below, k| z + f64::from(k) / below)
@@ -115,6 +116,7 @@ fn polynomial(coefficients: &[f64; 8], x: f64) -> f64 {
 }
 
 /// Numerators and denominators of AS 241.
+#[expect(clippy::excessive_precision, reason = "digits as published")]
 const CENTRE: [[f64; 8]; 2] = [
     [
         3.387_132_872_796_366_608,
@@ -137,6 +139,7 @@ const CENTRE: [[f64; 8]; 2] = [
         5.226_495_278_852_854_561e3,
     ],
 ];
+#[expect(clippy::excessive_precision, reason = "digits as published")]
 const MIDDLE: [[f64; 8]; 2] = [
     [
         1.423_437_110_749_683_577_34,
@@ -159,6 +162,7 @@ const MIDDLE: [[f64; 8]; 2] = [
         1.050_750_071_644_416_843_24e-9,
     ],
 ];
+#[expect(clippy::excessive_precision, reason = "digits as published")]
 const TAIL: [[f64; 8]; 2] = [
     [
         6.657_904_643_501_103_777_2,

@@ -92,6 +92,7 @@ impl Sorted {
     /// The value that a share lies below, 0 ≤ share ≤ 1: linear between the neighbours of rank share × (count − 1)
     /// (Hyndman & Fan 1996, type 7). Of bins, at the place of that rank within its bin. `None` of nothing.
     #[must_use]
+    #[expect(clippy::cast_sign_loss, reason = "a rank is not negative")]
     pub fn at(&self, share: f64) -> Option<f64> {
         let last = self.count().checked_sub(1)? as f64;
         let rank = (share.clamp(0.0, 1.0) * last).min(last);
@@ -241,6 +242,7 @@ impl Span {
         }
     }
 
+    #[expect(clippy::cast_possible_wrap, reason = "f64 have under three million bins")]
     fn filled(&self) -> impl DoubleEndedIterator<Item = (i32, u64)> {
         let all = self.counts.iter().enumerate();
         all.filter(|(_, count)| **count > 0).map(|(place, count)| (self.first + place as i32, *count))

@@ -124,7 +124,9 @@ fn ranks(pairs: &[[f64; 2]], which: usize) -> Vec<f64> {
     let counts: Vec<u64> = equal.iter().map(|group| group.len() as u64).collect();
     let mut out = vec![0.0; pairs.len()];
     for (group, rank) in equal.into_iter().zip(shared(&counts)) {
-        group.iter().for_each(|&i| out[i] = rank);
+        for &i in group {
+            out[i] = rank;
+        }
     }
     out
 }

@@ -36,6 +36,7 @@ impl PartialEq for Sum {
 
 impl Sum {
     /// Adds a number. What is not finite makes the value infinite or NaN, as in plain arithmetic.
+    #[expect(clippy::cast_sign_loss, reason = "exponents are counted from 0")]
     pub fn add(&mut self, x: f64) {
         if !x.is_finite() {
             self.beyond += x;
@@ -88,6 +89,7 @@ impl Sum {
     }
 
     /// The value of limbs that are all 0 or more: the highest three hold 97 bits or more.
+    #[expect(clippy::cast_possible_wrap, reason = "there are 46 limbs")]
     fn size(&self) -> f64 {
         let Some(highest) = self.limbs.iter().rposition(|limb| *limb != 0) else { return 0.0 };
         let lowest = highest.saturating_sub(2);

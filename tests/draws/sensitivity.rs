@@ -11,7 +11,7 @@ use crate::support::{model, model_with};
 fn tally(design: &Design, model: &Model, f: &dyn Fn(&[f64]) -> f64, numbers: impl Iterator<Item = u64>) -> Tally {
     let factors = design.factors().len();
     let mut tally = Tally::new(factors);
-    let mut at = |index: u64, row: Row| {
+    let at = |index: u64, row: Row| {
         let mut values = model.base_values();
         design.row(index, row, &mut values, &mut [0.0; 2]);
         f(&values)

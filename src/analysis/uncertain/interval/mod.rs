@@ -166,7 +166,9 @@ fn wilson(found: f64, n: f64, z: f64) -> [f64; 2] {
 #[must_use]
 pub fn of_mean(way: Way, groups: &[Moments]) -> Option<Interval95> {
     let mut all = Moments::default();
-    groups.iter().for_each(|group| all.and(group));
+    for group in groups {
+        all.and(group);
+    }
     let mean = all.mean().filter(|_| all.count > 1)?;
     let count = all.count as f64;
     let alone = Spread { variance: all.variance() / count, freedom: count - 1.0 };
@@ -192,7 +194,9 @@ pub fn of_mean(way: Way, groups: &[Moments]) -> Option<Interval95> {
 pub fn of_quantile(way: Way, groups: &[Quantiles], level: f64) -> Option<(f64, Interval95)> {
     let (first, others) = groups.split_first()?;
     let mut all = first.clone();
-    others.iter().for_each(|group| all.and(group));
+    for group in others {
+        all.and(group);
+    }
     let all = all.sorted();
     let value = all.at(level)?;
     let each = groups.iter().map(|group| group.clone().sorted());
