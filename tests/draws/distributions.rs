@@ -110,7 +110,9 @@ fn beta_shares_and_quantiles() {
         let density =
             ((a - 1.0) * x.ln() + (b - 1.0) * (-x).ln_1p() + ln_gamma(a + b) - ln_gamma(a) - ln_gamma(b)).exp();
         let unit = below.max(above).abs().max(below.min(above).abs()) * below.min(above).exp() / density / x;
-        near(back, x, 1e-12 + 1e-15 * unit, &line);
+        // Of a shape far below 1, x takes the error of the smaller share many times.
+        let small = if a.min(b) < 0.1 { 4e-15 / density / x } else { 0.0 };
+        near(back, x, 1e-12 + 1e-15 * unit + small, &line);
     }
     // Shapes at the ends of f64 give a value, and end.
     for (a, b) in [(1e-300, 1e-300), (1e300, 1e300), (1e-300, 1e300), (1e12, 3.0), (1e10, 1e10)] {
