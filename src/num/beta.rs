@@ -64,7 +64,7 @@ impl Beta {
     }
 
     /// Both shares at x: the regularised incomplete beta function I_x(a, b) and 1 − I_x, each to a relative error of 2e-13;
-    /// the smaller one to 4e-15 of the larger where that is more, as it is of shapes far below 1.
+    /// the smaller one to 2e-14 of the larger where that is more, as it is of shapes far below 1.
     ///
     /// By a continued fraction on the side where it converges. Of shapes so large that it does not end, by the normal
     /// distribution of the logit, which errs by some 1e-3 standard deviations there, or 1e-6 of x.
@@ -115,7 +115,7 @@ impl Beta {
     }
 
     /// The x that a share lies below, or above; in [0, 1], relative error about 1e-13, or what the
-    /// error of [`shares`](Self::shares) is worth in x: of shapes far below 1 that is 4e-15 divided by the shape. Where x is too near 0 or 1 to be told
+    /// error of [`shares`](Self::shares) is worth in x: of shapes far below 1 that is 2e-14 divided by the shape. Where x is too near 0 or 1 to be told
     /// from it, it is 0 or 1.
     ///
     /// Newton's method on the logarithm of the smaller share over the logit of x, kept within a bracket.
