@@ -110,7 +110,9 @@ impl Beta {
         // Near the mean both powers and B are huge and nearly cancel (DiDonato & Morris 1992, section 8).
         let (mean, other) = (a / (a + b), b / (a + b));
         let distance = if mean < other { x - mean } else { other - y };
-        let away = a * excess(distance / mean) + b * excess(-distance / other);
+        // Away from it the ratio itself has more digits than its distance from 1.
+        let part = |u: f64, ratio: f64| if u.abs() < 0.3 { excess(u) } else { u - ln(ratio) };
+        let away = a * part(distance / mean, x / mean) + b * part(-distance / other, y / other);
         0.5 * ln(a * other / (2.0 * PI)) - away + self.rest
     }
 
