@@ -63,7 +63,8 @@ impl Beta {
         Self { a, b, ln_function: ln_beta_function(a, b), rest }
     }
 
-    /// Both shares at x: the regularised incomplete beta function I_x(a, b) and 1 − I_x, each to a relative error of 2e-13;
+    /// Both shares at x: the regularised incomplete beta function I_x(a, b) and 1 − I_x, each to a relative error of 2e-13,
+    /// which of shapes above 1e5 grows as their root;
     /// the smaller one to 2e-14 of the larger where that is more, as it is of shapes far below 1.
     ///
     /// By a continued fraction on the side where it converges. Of shapes so large that it does not end, by the normal

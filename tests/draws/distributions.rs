@@ -98,20 +98,21 @@ fn beta_shares_and_quantiles() {
         let [a, b, x, below, above] = line[..] else { panic!("{line:?}") };
         let beta = Beta::new(a, b);
         let found = beta.shares(x);
+        // The mean is rounded, which large shapes multiply by their root.
         for (found, expected) in [(found.ln_below, below), (found.ln_above, above)] {
             let error = (found - expected).abs();
-            let fine = error <= 2e-13 + 1e-15 * expected.abs() || error * expected.exp() <= 2e-14;
+            let fine = error <= 2e-13 * (a.max(b) / 1e5).sqrt().max(1.0) + 1e-15 * expected.abs()
+                || error * expected.exp() <= 2e-14;
             assert!(fine, "{line:?}: {found}, not {expected}");
         }
         // From the side that decides x.
         let side = if below < above { Side::Below(below) } else { Side::Above(above) };
         let back = beta.quantile(side);
         // What one unit in the last digit of the logarithm is worth.
-        let density =
-            ((a - 1.0) * x.ln() + (b - 1.0) * (-x).ln_1p() + ln_gamma(a + b) - ln_gamma(a) - ln_gamma(b)).exp();
-        let unit = below.max(above).abs().max(below.min(above).abs()) * below.min(above).exp() / density / x;
+        let ln_density = (a - 1.0) * x.ln() + (b - 1.0) * (-x).ln_1p() + ln_gamma(a + b) - ln_gamma(a) - ln_gamma(b);
+        let unit = below.abs().max(above.abs()) * (below.min(above) - ln_density).exp() / x;
         // Of a shape far below 1, x takes the error of the smaller share many times.
-        let small = if a.min(b) < 0.1 { 2e-14 / density / x } else { 0.0 };
+        let small = if a.min(b) < 0.1 { 2e-14 / ln_density.exp() / x } else { 0.0 };
         near(back, x, 1e-12 + 1e-15 * unit + small, &line);
     }
     // Shapes at the ends of f64 give a value, and end.
