@@ -1,14 +1,14 @@
 """Writes draws_references.csv: distributions, points and random numbers that draws of parameters rest on.
 
 Run from this folder:  pip install -r requirements.txt && python3 draws_references.py
-It takes some seconds, and writes the same bytes everywhere.
+It takes half a minute, and writes the same bytes everywhere.
 
 A line is a name, its arguments, and what is expected; numbers read back to the same f64 or to whole numbers.
 philox: key and counter, each as whole numbers, then four whole numbers, by numpy's generator of that name.
 sobol: number of a point and of a dimension from 0, then 64 binary digits as a whole number: the first 25 as
 scipy.stats.qmc.Sobol gives them in the same order with 64 bits (it keeps 53 of them).
 normal: z, ln of the share below it.  beta: a, b, x, ln of the shares below and above.  gamma: x, ln Γ(x).  All by
-mpmath at 50 digits: erfc, and the integral of the density over 60 panels where its own incomplete beta function is slow.
+mpmath at 50 digits: erfc, and where its own incomplete beta function is slow a power series, or the integral of the density in panels.
 student: freedom, t, the share above t, from mpmath's incomplete beta function.
 """
 
@@ -60,6 +60,14 @@ def beta_tails(a, b, x):
         below = mpmath.betainc(a, b, 0, x, regularized=True)
         above = mpmath.betainc(b, a, 0, 1 - x, regularized=True)
         return below, above
+    if a < 100:
+        # The power series of the lower end; it alternates, and cancels some fifteen of the digits.
+        total, term = mpf(0), mpf(1)
+        for k in range(400):
+            total += term / (a + k)
+            term *= (k + 1 - b) / (k + 1) * x
+        below = total * x**a / mpmath.beta(a, b)
+        return below, 1 - below
     # Both shapes are large: a smooth integrand, negligible 30 standard deviations out.
     ln_function = mpmath.loggamma(a) + mpmath.loggamma(b) - mpmath.loggamma(a + b)
     density = lambda t: mpmath.exp((a - 1) * mpmath.log(t) + (b - 1) * mpmath.log(1 - t) - ln_function)
