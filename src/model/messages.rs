@@ -119,6 +119,7 @@ pub(super) enum Message {
     SamePair: "a correlation needs two different parameters, not \"{0}\" twice", "two different parameters", "";
     PairTwice: "the correlation of \"{0}\" and \"{1}\" is given twice", "", "keep one of the two";
     RankRange: "a rank correlation lies between -1 and 1, not at {0}", "-1 to 1", "";
+    Impossible: "these rank correlations cannot hold together", "", "{0} possible: {1}";
     NotDrawn: "\"{0}\" is not drawn, so it cannot be correlated", "a parameter with a draw or a range", "give \"{0}\" a draw or a range, or delete the correlation";
     DrawnTwice: "\"{0}\" is drawn twice: here, and as a column of \"{1}\"", "", "delete the draw here, or the column there";
     // Processes, equations and harvest.

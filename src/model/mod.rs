@@ -9,6 +9,7 @@
 //! (a module for each section).
 
 pub mod amend;
+pub mod correlated;
 mod events;
 mod findings;
 mod follow;

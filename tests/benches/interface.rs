@@ -169,7 +169,7 @@ fn busy(model: &str, keys: &str, size: (u16, u16)) -> Measured {
     session.wait_for_text("E1");
     session.wait_for_text("searching");
     // The scenarios before the one that takes long.
-    thread::sleep(Duration::from_millis(1000));
+    thread::sleep(Duration::from_secs(1));
     let mut steps = Measured::default();
     for key in keys.chars().cycle().take(100) {
         session.answer(&key.to_string(), QUIET).into_iter().for_each(|measured| steps.add(measured));

@@ -144,7 +144,7 @@ fn published_thresholds_are_on_the_picture() {
             let mut subject = subject(&mut read);
             let reach = 0.4 * published.at.abs();
             let control = control(&subject, published.parameter, published.at - reach, published.at + reach);
-            if published.state.iter().zip(&subject.sides).any(|(x, side)| !(side[0]..=side[1]).contains(&x)) {
+            if published.state.iter().zip(&subject.sides).any(|(x, side)| !(side[0]..=side[1]).contains(x)) {
                 continue;
             }
             let list = found(&mut subject);

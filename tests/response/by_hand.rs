@@ -64,7 +64,7 @@ impl Study {
     /// first piece. Takings are those of the model's harvests.
     pub(crate) fn response(&self, control: Control, branches: Vec<Vec<Piece>>) -> Response {
         let mut thresholds = Vec::new();
-        let branches = branches.into_iter().enumerate().map(|(place, pieces)| branch(place, pieces, &mut thresholds));
+        let branches = branches.into_iter().enumerate().map(|(place, pieces)| branch(place, &pieces, &mut thresholds));
         let branches = branches.collect();
         let takings = self.read.system.plans[0].harvests.iter().flat_map(|harvest| {
             let taking = |species| Taking { harvest: harvest.name.clone(), species };
@@ -91,7 +91,7 @@ impl Study {
 /// Points of a piece.
 const POINTS: usize = 24;
 
-fn branch(place: usize, pieces: Vec<Piece>, thresholds: &mut Vec<Threshold>) -> Branch {
+fn branch(place: usize, pieces: &[Piece], thresholds: &mut Vec<Threshold>) -> Branch {
     let present = (pieces[0].curve)(0.5).1.iter().map(|&x| x > 0.0).collect();
     let mut points: Vec<Point> = Vec::new();
     let mut ending = Ending::Range;

@@ -4,9 +4,13 @@ use super::desk::{Desk, Fields, is_null};
 use super::keys::{CORRELATION, DRAWS, PARAMETER};
 use super::names::Names;
 use crate::diag::Location;
+use crate::model::correlated::Correlated;
 use crate::model::messages::{Message, digits};
 use crate::model::tree::{Entry, Kind, Node};
 use crate::model::{Correlation, Draw, DrawTable, Name, Parameter, ParameterId, Placed};
+
+/// Pairs of correlated parameters that a message lists.
+const PAIRS_SHOWN: usize = 12;
 
 /// The parameters, their names declared. A value that could not be read is 0 here, and reported.
 pub(super) fn read(desk: &mut Desk<'_>, fields: &Fields<'_>, names: &mut Names) -> Vec<Parameter> {
@@ -205,7 +209,24 @@ pub(super) fn correlations(
         }
         found.push(correlation);
     }
+    if desk.is_clean() {
+        possible(desk, &found, parameters, node.at);
+    }
     found
+}
+
+/// That the correlations can hold together.
+fn possible(desk: &mut Desk<'_>, found: &[Correlation], parameters: &[Parameter], at: Location) {
+    let Err(impossible) = Correlated::of(found) else { return };
+    let name = |id: ParameterId| parameters[id.0].name.as_str();
+    let pair =
+        |(one, rank): (&Correlation, &f64)| format!("{} and {} {rank}", name(one.between[0]), name(one.between[1]));
+    let mut pairs: Vec<String> = found.iter().zip(&impossible.possible).take(PAIRS_SHOWN).map(pair).collect();
+    if found.len() > PAIRS_SHOWN {
+        pairs.push(format!("and so on for {} more", found.len() - PAIRS_SHOWN));
+    }
+    let how = if impossible.nearest { "the nearest that are" } else { "made smaller in one proportion they are" };
+    desk.say(Message::Impossible, at, &[&how, &pairs.join(", ")]);
 }
 
 fn correlation(desk: &mut Desk<'_>, node: &Node, names: &Names) -> Option<Correlation> {
