@@ -1,5 +1,7 @@
 //! Sums, quantiles and ranks of many numbers: exact where they say so, and the same of parts as of the whole.
 
+#![expect(clippy::cast_sign_loss, reason = "shares are not negative")]
+
 use restpoint::num::quantiles::{MOST_EXACT, Quantiles, WIDTH};
 use restpoint::num::random::Source;
 use restpoint::num::ranks::Ranks;
@@ -7,7 +9,9 @@ use restpoint::num::sum::Sum;
 
 fn sum(numbers: &[f64]) -> Sum {
     let mut sum = Sum::default();
-    numbers.iter().for_each(|x| sum.add(*x));
+    for x in numbers {
+        sum.add(*x);
+    }
     sum
 }
 
@@ -37,8 +41,8 @@ fn sums_of_many_and_of_parts() {
     let mut whole = 0i128;
     let mut parts = vec![Sum::default(); 3];
     for k in 0..100_000 {
-        let (size, power) = ((source.bits() >> 11) as i128, source.bits() % 50);
-        let size = if source.bits() % 2 == 0 { size } else { -size };
+        let (size, power) = (i128::from(source.bits() >> 11), source.bits() % 50);
+        let size = if source.bits().is_multiple_of(2) { size } else { -size };
         whole += size << power;
         parts[k % 3].add(size as f64 * 2f64.powi(power as i32));
     }
@@ -66,7 +70,9 @@ fn check_parts(planned: u64, numbers: &[f64]) {
 fn exact_quantiles() {
     let check = |numbers: &[f64], share: f64, expected: Option<f64>| {
         let mut quantiles = Quantiles::new(MOST_EXACT);
-        numbers.iter().for_each(|x| quantiles.push(*x));
+        for x in numbers {
+            quantiles.push(*x);
+        }
         assert!(quantiles.is_exact());
         assert_eq!(quantiles.sorted().at(share), expected, "{numbers:?} at {share}");
     };
@@ -100,7 +106,9 @@ fn quantiles_by_bins_are_near() {
         .collect();
     check_parts(MOST_EXACT + 1, &numbers);
     let mut bins = Quantiles::new(MOST_EXACT + 1);
-    numbers.iter().for_each(|x| bins.push(*x));
+    for x in &numbers {
+        bins.push(*x);
+    }
     assert!(!bins.is_exact());
     let bins = bins.sorted();
     numbers.sort_by(f64::total_cmp);
@@ -119,7 +127,9 @@ fn quantiles_by_bins_are_near() {
     }
     check_parts(MOST_EXACT + 1, &[f64::MAX, f64::MIN_POSITIVE, 5e-324, f64::NEG_INFINITY, -1.0, 0.0]);
     let mut ends = Quantiles::new(u64::MAX);
-    [f64::MAX, 5e-324, f64::NEG_INFINITY, f64::INFINITY].iter().for_each(|x| ends.push(*x));
+    for x in [f64::MAX, 5e-324, f64::NEG_INFINITY, f64::INFINITY] {
+        ends.push(x);
+    }
     let ends = ends.sorted();
     assert_eq!((ends.at(0.0), ends.at(1.0)), (Some(f64::NEG_INFINITY), Some(f64::INFINITY)));
     assert!(ends.at(2.0 / 3.0).is_some_and(|x| (x / f64::MAX - 1.0).abs() < WIDTH));
@@ -129,7 +139,9 @@ fn quantiles_by_bins_are_near() {
 fn rank_correlations() {
     let check = |pairs: &[(f64, f64)], expected: Option<f64>| {
         let mut ranks = Ranks::new(10, || [Vec::new(), Vec::new()]);
-        pairs.iter().for_each(|(x, y)| ranks.push(*x, *y));
+        for (x, y) in pairs {
+            ranks.push(*x, *y);
+        }
         match (ranks.correlation(), expected) {
             (Some(found), Some(expected)) => assert!((found - expected).abs() < 1e-15, "{pairs:?}: {found}"),
             (found, expected) => assert_eq!(found, expected, "{pairs:?}"),
@@ -172,7 +184,9 @@ fn rank_correlations_by_a_grid() {
             parts[k % 3].push(*x, *y);
         }
         let mut joined = parts.remove(2);
-        parts.iter().for_each(|part| joined.and(part));
+        for part in &parts {
+            joined.and(part);
+        }
         assert!(joined == whole && exact.is_exact() && !whole.is_exact());
         let (found, expected) = (whole.correlation().expect("spread"), exact.correlation().expect("spread"));
         assert!((found - expected).abs() < 1.5e-3, "{weight}: {found}, not {expected}");

@@ -108,7 +108,9 @@ fn chain(phi: f64, draws: usize, share: f64) -> [u64; 2] {
         let each = numbers.iter().enumerate().map(|(i, x)| (i * groups / draws, *x));
         held.count(Way::InOrder { effective: draws as f64 }, groups, each, &truth);
         let mut counted = Counted::default();
-        numbers.iter().for_each(|x| counted.push(*x > truth.threshold));
+        for x in &numbers {
+            counted.push(*x > truth.threshold);
+        }
         as_if_independent += holds(of_share(Way::Independent, &[counted]), truth.share);
     }
     held.check(&format!("chain {phi} {draws} {share}"));
@@ -148,8 +150,8 @@ fn intervals_by_hand() {
     check(Way::Independent, &[(0, 0)], None);
     check(Way::Independent, &[], None);
     check(Way::Independent, &[(3, 10)], of(3.0, 10.0, Basis::Independent));
-    check(Way::Independent, &[(0, 1000)], Some((0.0, 3.841_458_8 / 1003.841_458_8, Basis::Independent)));
-    check(Way::Randomised, &[(0, 100); 16], Some((0.0, 3.841_458_8 / 1603.841_458_8, Basis::NoSpread)));
+    check(Way::Independent, &[(0, 1000)], Some((0.0, 3.841_458_8 / 1_003.841_458_8, Basis::Independent)));
+    check(Way::Randomised, &[(0, 100); 16], Some((0.0, 3.841_458_8 / 1_603.841_458_8, Basis::NoSpread)));
     check(Way::Randomised, &[(50, 100); 16], of(800.0, 1600.0, Basis::NoSpread));
     check(Way::Randomised, &[(1, 1)], of(1.0, 1.0, Basis::NoSpread));
     let file = Way::InOrder { effective: 40.0 };
@@ -164,7 +166,9 @@ fn intervals_by_hand() {
 fn means_by_hand() {
     let group = |numbers: &[f64]| {
         let mut moments = Moments::default();
-        numbers.iter().for_each(|x| moments.push(*x));
+        for x in numbers {
+            moments.push(*x);
+        }
         moments
     };
     // 1, 2, 3: standard error 1/√3, Student's 4.302653 of two degrees.

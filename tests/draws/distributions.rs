@@ -1,5 +1,7 @@
 //! Distributions and random numbers against `tests/data/draws_references.csv`, and parameters drawn by them.
 
+#![expect(clippy::cast_sign_loss, reason = "shares are not negative")]
+
 use restpoint::analysis::uncertain::draw::Sampling;
 use restpoint::num::beta::{Beta, Side};
 use restpoint::num::gamma::{excess, ln_gamma};

@@ -1,5 +1,7 @@
 //! Points: even where they claim to be, and the same whoever makes them.
 
+#![expect(clippy::cast_sign_loss, reason = "shares are not negative")]
+
 use restpoint::analysis::uncertain::draw::{Plan, Sampling};
 use restpoint::num::permutation::Permutation;
 

@@ -1,8 +1,8 @@
 //! Files have fewer points of a branch than were followed, and straight lines between them still show it.
 
 use restpoint::analysis::linearise::Kind;
+use restpoint::analysis::response::{Advice, Margins, Point};
 use restpoint::report::response::{Along, Chosen, FIELDS, Reach, Responses, json};
-use restpoint::report::response::{Along, Chosen, FIELDS, Responses, json};
 use serde_json::Value;
 
 use crate::support::{CONTROL, branch, point, response};

@@ -1,8 +1,8 @@
 //! A response drawn in characters: the control across, a quantity upwards, one curve a branch.
 //!
-//! [`View`] says what is looked at, [`drawing`] lays it between its axes as a grid, [`signs`] says what its signs mean, as far
+//! [`View`] says what is looked at, [`drawing()`] lays it between its axes as a grid, [`signs()`] says what its signs mean, as far
 //! as they occur, [`text()`] is both for a page, [`mark`] is the sign of each of the
-//! thresholds that [`marked`] lists, which whoever lists them repeats, [`cut`] what a vertical rule
+//! thresholds that [`marked`] lists, which whoever lists them repeats, [`cut()`] what a vertical rule
 //! meets, [`stays`] how far that stays what it is. The stroke of a branch tells its type; it comes from the table of kinds. A part of a branch that is not feasible is
 //! not drawn. To draw something more: a `Mark` in `canvas`, its meaning in `signs`.
 
