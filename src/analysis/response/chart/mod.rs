@@ -297,7 +297,9 @@ impl<'w> Work<'w> {
 
     fn curve(&mut self, traced: &Traced) -> ChartCurve {
         let m = traced.face.moving.len();
-        let points: Vec<[f64; 2]> = traced.places.iter().map(|place| [place.at[m], place.at[m + 1]]).collect();
+        let [across, upwards] = self.controls;
+        let on_chart = |place: &Place| [on_side(place.at[m], across), on_side(place.at[m + 1], upwards)];
+        let points: Vec<[f64; 2]> = traced.places.iter().map(on_chart).collect();
         let states: Vec<Vec<f64>> = traced.places.iter().map(|place| self.state(&traced.face, &place.at)).collect();
         let stable =
             points.iter().zip(&states).map(|(at, state)| self.describer.others_attract(state, at) == Some(true));
@@ -309,6 +311,15 @@ impl<'w> Work<'w> {
             closed: traced.closed,
         }
     }
+}
+
+/// Nearer to an end of a control's range than this share of it, a curve ends there.
+const ON_SIDE: f64 = 1e-13;
+
+/// A value of a control, which is the end of its range where only rounding keeps it from that.
+fn on_side(value: f64, control: Control) -> f64 {
+    let room = ON_SIDE * (control.to - control.from);
+    [control.from, control.to].into_iter().find(|end| (value - end).abs() <= room).unwrap_or(value)
 }
 
 /// The places of a curve through one, in order, and how it ends at the first and the last.
