@@ -1,7 +1,6 @@
 //! The comparison in every format, read back by readers that are not ours, with any names in it.
 
 use csv::StringRecord;
-use pulldown_cmark::{Event, Options, Parser, Tag, TagEnd};
 use restpoint::analysis::passage::{Fate, Passage, Reason};
 use restpoint::diag::cleanse::cleanse;
 use restpoint::model::{Model, SpeciesId};
@@ -9,6 +8,7 @@ use restpoint::report::compare::{Change, Comparison, csv, json, latex, markdown,
 use restpoint::report::table::{Page, Style};
 use serde_json::Value;
 
+use crate::table_support::markdown::read_markdown;
 use crate::table_support::{HOSTILE, hostile_model, model, with_table_of};
 use crate::tex;
 
@@ -143,24 +143,6 @@ fn csv_has_a_row_for_each_equilibrium_and_scenario() {
             }
         }
     }
-}
-
-/// Headings, and rows of cells of each table, as a reader of Markdown sees them.
-fn read_markdown(text: &str) -> (Vec<String>, Vec<Vec<Vec<String>>>) {
-    let (mut headings, mut tables, mut words) = (Vec::new(), Vec::<Vec<Vec<String>>>::new(), String::new());
-    for event in Parser::new_ext(text, Options::ENABLE_TABLES | Options::ENABLE_STRIKETHROUGH) {
-        match event {
-            Event::Start(Tag::Table(_)) => tables.push(Vec::new()),
-            Event::Start(Tag::TableHead | Tag::TableRow) => tables.last_mut().unwrap().push(Vec::new()),
-            Event::Start(Tag::Heading { .. } | Tag::Paragraph | Tag::TableCell) => words.clear(),
-            Event::End(TagEnd::Heading(_)) => headings.push(words.clone()),
-            Event::End(TagEnd::TableCell) => tables.last_mut().unwrap().last_mut().unwrap().push(words.clone()),
-            Event::Text(text) => words.push_str(&text),
-            Event::Start(Tag::Strong | Tag::Emphasis) | Event::End(_) => {}
-            other => panic!("{other:?} in {text}"),
-        }
-    }
-    (headings, tables)
 }
 
 #[test]

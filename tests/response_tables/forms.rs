@@ -1,7 +1,6 @@
 //! Responses and charts in every form, read back by readers that are not ours, with any names in them.
 
 use csv::StringRecord;
-use pulldown_cmark::{Event, Options, Parser, Tag, TagEnd};
 use restpoint::diag::cleanse::cleanse;
 use restpoint::model::Model;
 use restpoint::report::response::chart;
@@ -11,6 +10,7 @@ use serde_json::{Value, json};
 use unicode_width::UnicodeWidthStr;
 
 use crate::support::{with_charts_of, with_responses_of};
+use crate::table_support::markdown::read_markdown;
 use crate::table_support::{HOSTILE, SHA256, hostile_model, model};
 use crate::tex;
 
@@ -185,24 +185,6 @@ fn no_name_becomes_a_formula_in_csv() {
             }
         }
     }
-}
-
-/// Headings, and rows of cells of each table, as a reader of Markdown sees them.
-fn read_markdown(text: &str) -> (Vec<String>, Vec<Vec<Vec<String>>>) {
-    let (mut headings, mut tables, mut words) = (Vec::new(), Vec::<Vec<Vec<String>>>::new(), String::new());
-    for event in Parser::new_ext(text, Options::ENABLE_TABLES | Options::ENABLE_STRIKETHROUGH) {
-        match event {
-            Event::Start(Tag::Table(_)) => tables.push(Vec::new()),
-            Event::Start(Tag::TableHead | Tag::TableRow) => tables.last_mut().unwrap().push(Vec::new()),
-            Event::Start(Tag::Heading { .. } | Tag::Paragraph | Tag::TableCell) => words.clear(),
-            Event::End(TagEnd::Heading(_)) => headings.push(words.clone()),
-            Event::End(TagEnd::TableCell) => tables.last_mut().unwrap().last_mut().unwrap().push(words.clone()),
-            Event::Text(text) => words.push_str(&text),
-            Event::Start(Tag::Strong | Tag::Emphasis) | Event::End(_) => {}
-            other => panic!("{other:?} in {text}"),
-        }
-    }
-    (headings, tables)
 }
 
 #[test]

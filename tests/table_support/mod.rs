@@ -2,6 +2,8 @@
 #![allow(clippy::panic, clippy::unwrap_used, reason = "a test fails by panicking")]
 #![allow(dead_code, unreachable_pub, missing_docs, reason = "each file uses its own part")]
 
+pub mod markdown;
+
 use nalgebra::Complex;
 use restpoint::analysis::assess::{Assessed, Assessment};
 use restpoint::analysis::equilibria::{Derivative, Equilibria, Equilibrium, Probably, Unresolved};
